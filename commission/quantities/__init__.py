@@ -1,0 +1,32 @@
+"""Units, nomenclature and `Explained`: the words and numbers that every room shares. Knows no physics."""
+
+from commission.quantities.display import Display, json_value, pretty
+from commission.quantities.explained import Explained, Input, Method, methods
+from commission.quantities.kinds import SI_UNIT, Kind
+from commission.quantities.nomenclature import NOMENCLATURE, Quantity
+from commission.quantities.parse import Pressure, QuantityError, describe, parse, parse_number, parse_pressure
+from commission.quantities.units import UNITS, Reference, Unit, find_unit
+
+__all__ = [
+    "NOMENCLATURE",
+    "SI_UNIT",
+    "UNITS",
+    "Display",
+    "Explained",
+    "Input",
+    "Kind",
+    "Method",
+    "Pressure",
+    "Quantity",
+    "QuantityError",
+    "Reference",
+    "Unit",
+    "describe",
+    "find_unit",
+    "json_value",
+    "methods",
+    "parse",
+    "parse_number",
+    "parse_pressure",
+    "pretty",
+]

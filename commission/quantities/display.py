@@ -1,0 +1,122 @@
+"""How a number is shown to a person: unit and digits by kind, metric or US; pressures say gauge or absolute."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+from commission.quantities.kinds import Kind
+from commission.quantities.nomenclature import NOMENCLATURE
+from commission.quantities.units import Reference, Unit, find_unit
+
+UnitSystem = Literal["metric", "us_customary"]
+
+_SHOWN: dict[Kind, tuple[tuple[str, int], tuple[str, int]]] = {
+    Kind.TEMPERATURE: (("°C", 1), ("°F", 1)),
+    Kind.TEMPERATURE_DIFFERENCE: (("K", 1), ("°F difference", 1)),
+    Kind.PRESSURE: (("bar g", 2), ("psig", 1)),
+    Kind.PRESSURE_DIFFERENCE: (("kPa", 1), ("psi", 2)),
+    Kind.POWER: (("kW", 2), ("kW", 2)),
+    Kind.ENERGY: (("kWh", 2), ("kWh", 2)),
+    Kind.MASS: (("kg", 2), ("lb", 2)),
+    Kind.VOLUME: (("L", 1), ("US gal", 2)),
+    Kind.LENGTH: (("m", 2), ("ft", 1)),
+    Kind.AREA: (("m2", 1), ("ft2", 0)),
+    Kind.VOLUME_FLOW: (("m3/h", 0), ("cfm", 0)),
+    Kind.MASS_FLOW: (("kg/h", 1), ("lb/h", 1)),
+    Kind.CONDUCTANCE: (("W/K", 0), ("Btu/h °F", 0)),
+    Kind.CURRENT: (("A", 1), ("A", 1)),
+    Kind.VOLTAGE: (("V", 0), ("V", 0)),
+    Kind.SPEED: (("rpm", 0), ("rpm", 0)),
+    Kind.VELOCITY: (("m/s", 1), ("fpm", 0)),
+    Kind.DURATION: (("min", 0), ("min", 0)),
+    Kind.RATIO: (("%", 0), ("%", 0)),
+    Kind.DENSITY: (("kg/m3", 3), ("lb/ft3", 4)),
+    Kind.SPECIFIC_ENTHALPY: (("kJ/kg", 1), ("Btu/lb", 1)),
+    Kind.SOUND_LEVEL: (("dB(A)", 0), ("dB(A)", 0)),
+}
+
+JSON_UNIT: dict[Kind, str] = {Kind.TEMPERATURE: "°C", Kind.PRESSURE: "Pa"}
+"""Units of `--json` where they are not the SI unit of the kind: °C, and Pa absolute."""
+
+
+def _unit(name: str, kind: Kind) -> Unit:
+    unit = find_unit(name, kind)
+    if unit is None:
+        raise ValueError(f"{name} is not a unit of {kind}")
+    return unit
+
+
+@dataclass(frozen=True, slots=True)
+class Display:
+    """Shows SI values to a person at one site.
+
+    `barometric_pressure` in Pa turns absolute pressures into the gauge pressures that instruments show.
+    """
+
+    system: UnitSystem
+    barometric_pressure: float
+
+    def unit_and_digits(self, kind: Kind) -> tuple[str, int]:
+        """The unit shown for `kind` and the digits behind the point."""
+        if kind is Kind.NUMBER:
+            return "", 2
+        return _SHOWN[kind][0 if self.system == "metric" else 1]
+
+    def convert(self, value: float, kind: Kind) -> float:
+        """An SI value in the unit shown; an absolute pressure becomes gauge where the unit is gauge."""
+        if kind is Kind.NUMBER:
+            return value
+        unit = _unit(self.unit_and_digits(kind)[0], kind)
+        if unit.reference is Reference.GAUGE:
+            value = value - self.barometric_pressure
+        return (value - unit.offset) / unit.factor
+
+    def number(self, value: float, kind: Kind, digits: int | None = None) -> str:
+        """The number alone, in the unit shown, with a true minus sign and no negative zero."""
+        places = self.unit_and_digits(kind)[1] if digits is None else digits
+        text = f"{self.convert(value, kind):.{places}f}"
+        if float(text) == 0:
+            text = text.lstrip("-")
+        return text.replace("-", "−")
+
+    def text(self, value: float, kind: Kind, digits: int | None = None) -> str:
+        """Number and unit, such as `−8.0 °C` or `2.31 bar g`."""
+        unit = pretty(self.unit_and_digits(kind)[0])
+        return f"{self.number(value, kind, digits)} {unit}".rstrip()
+
+    def spread(self, value: float, kind: Kind, digits: int | None = None) -> str:
+        """The size of an uncertainty or deviation of this kind, number alone: an offset never applies."""
+        places = self.unit_and_digits(kind)[1] if digits is None else digits
+        factor = 1.0 if kind is Kind.NUMBER else _unit(self.unit_and_digits(kind)[0], kind).factor
+        text = f"{value / factor:.{places}f}"
+        if float(text) == 0:
+            text = text.lstrip("-")
+        return text.replace("-", "−")
+
+    def spread_unit(self, kind: Kind) -> str:
+        """The unit of `spread`: K for temperatures, bar for gauge pressures."""
+        name = self.unit_and_digits(kind)[0]
+        if kind is Kind.TEMPERATURE:
+            name = "K" if self.system == "metric" else "°F difference"
+        if kind is Kind.PRESSURE:
+            name = "bar" if self.system == "metric" else "psi"
+        return pretty(name)
+
+    def of(self, key: str, value: float) -> str:
+        """Number and unit of a quantity of the nomenclature."""
+        return self.text(value, NOMENCLATURE[key].kind)
+
+
+def pretty(unit: str) -> str:
+    """A unit as printed: m³/h for m3/h; a difference in °F says so without the word."""
+    return unit.replace("m3", "m³").replace("m2", "m²").replace("ft3", "ft³").replace("ft2", "ft²")
+
+
+def json_value(value: float, kind: Kind) -> tuple[float, str]:
+    """Value and unit for `--json`: °C, K, Pa absolute, W, kg/s."""
+    from commission.quantities.kinds import SI_UNIT
+
+    if kind is Kind.TEMPERATURE:
+        return value - 273.15, "°C"
+    return value, JSON_UNIT.get(kind, SI_UNIT[kind])
