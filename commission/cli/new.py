@@ -1,0 +1,34 @@
+"""`commission new`: a first description to work on."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import click
+
+from commission.cli.options import say
+
+DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", "water_heating")
+
+
+@click.command(name="new")
+@click.argument("folder", type=click.Path(path_type=Path))
+@click.option("--duty", type=click.Choice(DUTIES), help="What the system does.")
+@click.option(
+    "--from-schedule",
+    "schedule",
+    type=click.Path(path_type=Path),
+    help="An equipment schedule as CSV, one row per system, instead of --duty.",
+)
+def command(folder: Path, duty: str | None, schedule: Path | None) -> None:
+    """Write a first description into FOLDER, commented, valid as written, never overwriting a file."""
+    from commission.errors import InputError, Problem
+
+    if (duty is None) == (schedule is None):
+        raise InputError(Problem("say either --duty or --from-schedule", allowed=f"--duty one of {', '.join(DUTIES)}"))
+    from commission.description import from_schedule, new_plant
+
+    written = new_plant(folder, duty) if duty else from_schedule(schedule, folder)  # type: ignore[arg-type]
+    for path in written:
+        click.echo(str(path))
+    say(f"next: commission review {folder}, then commission build {folder}")

@@ -1,0 +1,128 @@
+"""`commission predict`: what each system should read at a condition."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Mapping
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from commission.cli.options import check_system, json_option, parse_conditions, plant_argument
+from commission.errors import InputError, NotCalculatedError, Problem
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.prediction import Prediction
+    from commission.quantities import Display
+
+COVERAGE = 2.0  # expanded uncertainty as shown and printed: about 95 % (JCGM 100:2008, 6.2 and G.6.6)
+
+
+@click.command(name="predict")
+@plant_argument
+@click.option("--system", metavar="ID", help="Only this system.")
+@click.option(
+    "--at",
+    "pairs",
+    multiple=True,
+    metavar="KEY=VALUE",
+    help="A condition of the day, such as 'heat_sink_inlet_temperature=31 °C'; may be repeated. Needs --system.",
+)
+@json_option
+def command(plant: Path, system: str | None, pairs: tuple[str, ...], as_json: bool) -> None:
+    """Print what each gauge, probe and meter of PLANT should read.
+
+    Without --at this is the rated condition of each system. Uncertainties are expanded ones, coverage factor 2.
+    """
+    if pairs and system is None:
+        raise InputError(Problem("--at needs --system, since each system has conditions of its own", path="--at"))
+    from commission.description import load_plant
+
+    loaded = load_plant(plant)
+    known = list(loaded.plant.systems)
+    if system is not None:
+        check_system(system, known)
+    conditions = parse_conditions(pairs, loaded.barometric_pressure) if pairs else None
+    results = {name: _predict(loaded, name, conditions) for name in ([system] if system else known)}
+    if as_json:
+        click.echo(json.dumps({"systems": {n: _as_data(r) for n, r in results.items()}}, indent=2, ensure_ascii=False))
+        return
+    from commission.quantities import Display
+
+    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    blocks = []
+    for name, result in results.items():
+        title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
+        blocks.append(_as_text(title, result, display))
+    click.echo("\n\n".join(blocks))
+
+
+def _predict(loaded: LoadedPlant, system: str, conditions: Mapping[str, float] | None) -> Prediction | str:
+    """The prediction, or the reason why there is none; a condition that the system does not have stays an error."""
+    from commission.prediction import fit
+
+    try:
+        model = fit(loaded, system)
+    except NotCalculatedError as error:
+        return error.problems[0].message
+    unknown = [key for key in conditions or {} if key not in model.condition_axes]
+    if unknown:
+        from commission.errors import nearest
+
+        known = ", ".join(model.condition_axes)
+        raise InputError(
+            *(
+                Problem("this is not a condition of this system", path=f"--at {k}", allowed=known,
+                        nearest=nearest(k, model.condition_axes))
+                for k in unknown
+            )
+        )  # fmt: skip
+    try:
+        return model.predict(conditions)
+    except NotCalculatedError as error:
+        return error.problems[0].message
+
+
+def _as_data(result: Prediction | str) -> dict[str, Any]:
+    from commission.quantities import NOMENCLATURE, json_value
+
+    if isinstance(result, str):
+        return {"conditions": {}, "expected": {}, "not_calculated": {"system": result}}
+    conditions = {}
+    for key, value in result.conditions.items():
+        number, unit = json_value(value, NOMENCLATURE[key].kind)
+        conditions[key] = {"value": number, "unit": unit}
+    expected = {}
+    for key, explained in result.expected.items():
+        number, unit = json_value(explained.value, NOMENCLATURE[key].kind)
+        u = explained.uncertainty
+        spread = None if u is None else COVERAGE * u
+        expected[key] = {"value": number, "unit": unit, "uncertainty": spread}
+    return {"conditions": conditions, "expected": expected, "not_calculated": dict(result.not_calculated)}
+
+
+def _as_text(title: str, result: Prediction | str, display: Display) -> str:
+    from commission.quantities import NOMENCLATURE
+
+    lines = [title]
+    if isinstance(result, str):
+        return f"{title}\n  not calculated: because {result}"
+    for key, value in result.conditions.items():
+        taken = "  (rated, not given)" if key in result.filled else ""
+        lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, value)}{taken}")
+    lines.append(f"  regime: {result.regime}")
+    rows = [("", "expected", "± (k = 2)")]
+    for key, explained in result.expected.items():
+        quantity = NOMENCLATURE[key]
+        u = explained.uncertainty
+        spread = "not stated" if u is None else f"{display.spread(COVERAGE * u, quantity.kind)} " + display.spread_unit(
+            quantity.kind
+        )
+        rows.append((quantity.label, display.of(key, explained.value), spread.strip()))
+    widths = [max(len(row[i]) for row in rows) for i in range(3)]
+    lines += [f"  {a:<{widths[0]}}  {b:>{widths[1]}}  {c:>{widths[2]}}" for a, b, c in rows]
+    lines += [f"  {NOMENCLATURE[k].label}: not calculated: because {why}" for k, why in result.not_calculated.items()]
+    lines += [f"  note: {warning}" for warning in result.warnings]
+    return "\n".join(lines)
