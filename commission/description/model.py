@@ -25,6 +25,8 @@ from commission.description.fields import (
     VolumeFlow,
     YesNo,
 )
+from commission.description.instruments import MEASURED, ResolvedInstrument, read_end
+from commission.quantities import NOMENCLATURE, parse
 
 Duty = Literal["cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", "water_heating"]
 MediumName = Literal["air", "water", "propylene glycol", "ethylene glycol"]
@@ -114,6 +116,26 @@ class Instrument(Part):
     calibrated_on: Date | None = Field(None)
     calibrated_until: Date | None = Field(None)
     certificate: str | None = Field(None, description="file under documents/")
+
+    @property
+    def resolved(self) -> ResolvedInstrument:
+        """The instrument in SI; its texts were checked when the description was read."""
+        kind, difference = MEASURED[self.measures]
+        low = read_end(self.from_, kind) if self.from_ is not None else None
+        high = read_end(self.to, kind) if self.to is not None else None
+        accuracy = self.accuracy or Accuracy()
+        return ResolvedInstrument(
+            measures=self.measures,
+            kind=kind,
+            difference_kind=difference,
+            range_low=low[0] if low else None,
+            range_high=high[0] if high else None,
+            reference=(low or high or (0.0, None))[1],
+            accuracy_of_span=accuracy.of_span,
+            accuracy_of_reading=accuracy.of_reading,
+            accuracy_absolute=parse(accuracy.absolute, difference) if accuracy.absolute is not None else None,
+            resolution=parse(self.resolution, difference) if self.resolution is not None else None,
+        )
 
 
 class Nameplate(Part):
@@ -299,6 +321,11 @@ class Guarantee(Part):
     )
     source: str | None = Field(None, description="clause of the contract")
 
+    @property
+    def value_si(self) -> float:
+        """The guaranteed value in SI (W, or 1 for a COP); its text was checked when the description was read."""
+        return parse(self.value, NOMENCLATURE[self.quantity].kind)
+
 
 class SystemSpaces(Part):
     """Which space holds which part."""
@@ -314,6 +341,15 @@ class Document(Part):
     title: str = Field()
     file: str | None = Field(None, description="path under documents/")
     reference: str | None = Field(None, description="number or clause")
+
+
+class AssumptionOverride(Part):
+    """A better value for one entry of the assumption list; without low and high it counts as a known fact."""
+
+    value: str = Field(description="value with unit")
+    low: str | None = Field(None, description="lower end of the range it may have")
+    high: str | None = Field(None, description="upper end of the range it may have")
+    source: str = Field(description="where the value comes from")
 
 
 class System(Part):
@@ -340,6 +376,9 @@ class System(Part):
     guarantee: tuple[Guarantee, ...] = Field(())
     measured_with: dict[str, str] = Field(default_factory=dict, description="instrument id for each quantity")
     documents: tuple[Document, ...] = Field(())
+    assumptions: dict[str, AssumptionOverride] = Field(
+        default_factory=dict, description="what is known better here than the assumption list says"
+    )
 
 
 class Plant(Part):

@@ -1,0 +1,41 @@
+"""The plant description: YAML that a person writes becomes a typed, checked plant, each part with its place."""
+
+from commission.description.assumptions import Assumption, assumptions_for
+from commission.description.checking import check, validate
+from commission.description.instruments import MEASURED, ResolvedInstrument
+from commission.description.model import (
+    Conditions,
+    Guarantee,
+    Instrument,
+    Part,
+    Plant,
+    RatedPoint,
+    System,
+)
+from commission.description.plant import LoadedPlant, load_plant
+from commission.description.positions import DescriptionError, KeyPath, Position, Positions
+from commission.description.reading import ReadFile, read_yaml
+
+__all__ = [
+    "MEASURED",
+    "Assumption",
+    "Conditions",
+    "DescriptionError",
+    "Guarantee",
+    "Instrument",
+    "KeyPath",
+    "LoadedPlant",
+    "Part",
+    "Plant",
+    "Position",
+    "Positions",
+    "RatedPoint",
+    "ReadFile",
+    "ResolvedInstrument",
+    "System",
+    "assumptions_for",
+    "check",
+    "load_plant",
+    "read_yaml",
+    "validate",
+]

@@ -1,0 +1,191 @@
+"""The shape of what was read: pydantic checks it, and each of its errors becomes a problem with its place."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from itertools import islice
+from types import NoneType, UnionType
+from typing import Annotated, Any, Literal, TypeVar, Union, get_args, get_origin
+
+from pydantic import BaseModel, ValidationError
+from pydantic.fields import FieldInfo
+from pydantic_core import ErrorDetails
+
+from commission.description.positions import DescriptionError, KeyPath, Positions
+from commission.errors import InputError, Problem, nearest, shorten
+
+MAX_PROBLEMS = 100
+"""Most problems that one run reports in full; a file with more is wrong as a whole."""
+
+ModelT = TypeVar("ModelT", bound=BaseModel)
+
+_WANTED = {
+    "string_type": "text is wanted here, not a list or mapping",
+    "dict_type": "keys with values are wanted here",
+    "model_type": "keys with values are wanted here",
+    "model_attributes_type": "keys with values are wanted here",
+    "tuple_type": "a list is wanted here",
+    "list_type": "a list is wanted here",
+    "invalid_key": "a key must be text",
+}
+
+
+def validate(
+    model_cls: type[ModelT],
+    data: Any,
+    positions: Positions,
+    *,
+    at: KeyPath = (),
+    also: Sequence[Problem] = (),
+    error: type[InputError] = DescriptionError,
+) -> ModelT:
+    """`data` as a `model_cls`; `at` is the key path of `data` in `positions`.
+
+    `also` are problems found before (duplicate keys): they are reported together with those of the shape.
+
+    Raises:
+        error: with every problem found, `DescriptionError` unless said otherwise.
+    """
+    model, problems = check(model_cls, data, positions, at=at)
+    problems = [*also, *problems]
+    if problems:
+        raise error(*bounded(problems))
+    assert model is not None
+    return model
+
+
+def check(
+    model_cls: type[ModelT], data: Any, positions: Positions, *, at: KeyPath = ()
+) -> tuple[ModelT | None, list[Problem]]:
+    """The model, or the problems that keep `data` from being one."""
+    try:
+        return model_cls.model_validate(data), []
+    except ValidationError as failure:
+        details = failure.errors(include_url=False)
+        problems = [_problem(model_cls, e, positions, at) for e in islice(details, MAX_PROBLEMS)]
+        if len(details) > MAX_PROBLEMS:
+            problems.append(positions.problem(at, f"and {len(details) - MAX_PROBLEMS} more problems"))
+        return None, problems
+
+
+def bounded(problems: Sequence[Problem]) -> list[Problem]:
+    """Each problem once, in the order of the file, and not more than a person can read."""
+    unique = {(p.file, p.line, p.column, p.message): p for p in reversed(problems)}
+    ordered = sorted(unique.values(), key=lambda p: (p.file or "", p.line or 0, p.column or 0))
+    if len(ordered) > MAX_PROBLEMS:
+        last = ordered[MAX_PROBLEMS]
+        more = Problem(
+            f"and {len(ordered) - MAX_PROBLEMS} more problems from here on", last.file, last.line, last.column
+        )
+        ordered = [*ordered[:MAX_PROBLEMS], more]
+    return ordered
+
+
+def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positions, at: KeyPath) -> Problem:
+    """One pydantic error as a problem at its place."""
+    inside: KeyPath = tuple(part for part in error["loc"] if part != "[key]")
+    path = (*at, *inside)
+    context: Mapping[str, Any] = error.get("ctx") or {}
+    match error["type"]:
+        case "extra_forbidden":
+            known = known_keys(_annotation_at(model_cls, inside[:-1]))
+            word = str(inside[-1])
+            return positions.problem(
+                path,
+                f"the key {shorten(word, 60)!r} is not known here",
+                allowed=_listed(known),
+                nearest=nearest(word, known),
+                at_key=True,
+            )
+        case "missing":
+            return _missing(model_cls, inside, positions, path)
+        case "literal_error" | "enum":
+            choices = choices_of(_annotation_at(model_cls, inside))
+            written = positions.text(path)
+            near = nearest(written, choices) if written else None
+            return positions.problem(path, "this word is not known here", allowed=_listed(choices), nearest=near)
+        case "quantity" | "yes_no" | "date" | "meaning":
+            return positions.problem(
+                path, str(context["message"]), allowed=context.get("allowed"), nearest=context.get("nearest")
+            )
+        case "too_short":
+            return positions.problem(path, "at least one entry is wanted here")
+        case kind:
+            message = _WANTED.get(kind) or shorten(error["msg"])
+            if positions.text(path) == "":
+                message = f"nothing is written here; {message}"
+            allowed = _listed(known_keys(_annotation_at(model_cls, inside))) if "keys" in message else None
+            return positions.problem(path, message, allowed=allowed or None)
+
+
+def _missing(model_cls: type[BaseModel], inside: KeyPath, positions: Positions, path: KeyPath) -> Problem:
+    field = _field_at(model_cls, inside)
+    meaning = f" ({field.description})" if field and field.description else ""
+    choices = choices_of(field.annotation) if field else ()
+    parent = path[:-1]
+    where = f"in {parent[-1]!s}" if parent else "in this file"
+    problem = positions.problem(
+        parent, f"the key {path[-1]!r}{meaning} is missing {where}", allowed=_listed(choices) or None, at_key=True
+    )
+    return Problem(
+        problem.message, problem.file, problem.line, problem.column, ".".join(map(str, path)), None, problem.allowed
+    )
+
+
+def _listed(words: Sequence[str]) -> str:
+    return ", ".join(words)
+
+
+def known_keys(annotation: Any) -> tuple[str, ...]:
+    """The keys that may stand in a mapping of this type; none where the keys are names that a person chooses."""
+    annotation = _plain(annotation)
+    if isinstance(annotation, type) and issubclass(annotation, BaseModel):
+        return tuple(info.alias or name for name, info in annotation.model_fields.items())
+    return ()
+
+
+def choices_of(annotation: Any) -> tuple[str, ...]:
+    """The words allowed by a type that is a choice of words, else nothing."""
+    annotation = _plain(annotation)
+    return tuple(map(str, get_args(annotation))) if get_origin(annotation) is Literal else ()
+
+
+def _plain(annotation: Any) -> Any:
+    """A type without its `Annotated` and `| None` wrappings."""
+    while True:
+        origin = get_origin(annotation)
+        if origin is Annotated:
+            annotation = get_args(annotation)[0]
+        elif origin in (Union, UnionType):
+            parts = [a for a in get_args(annotation) if a is not NoneType]
+            if len(parts) != 1:
+                return annotation
+            annotation = parts[0]
+        else:
+            return annotation
+
+
+def _field_at(model_cls: type[BaseModel], inside: KeyPath) -> FieldInfo | None:
+    owner = _plain(_annotation_at(model_cls, inside[:-1]))
+    if isinstance(owner, type) and issubclass(owner, BaseModel):
+        for name, info in owner.model_fields.items():
+            if inside[-1] in (name, info.alias):
+                return info
+    return None
+
+
+def _annotation_at(model_cls: type[BaseModel], inside: KeyPath) -> Any:
+    """The type that a model has at a key path; `Any` where the path leaves the model."""
+    current: Any = model_cls
+    for part in inside:
+        current = _plain(current)
+        if isinstance(current, type) and issubclass(current, BaseModel):
+            info = next((f for n, f in current.model_fields.items() if part in (f.alias or n, n)), None)
+            current = info.annotation if info else Any
+        elif get_origin(current) in (dict, Mapping):
+            current = get_args(current)[1]
+        elif get_origin(current) in (tuple, list):
+            current = get_args(current)[0]
+        else:
+            return Any
+    return current

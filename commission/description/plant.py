@@ -1,0 +1,110 @@
+"""One folder is one plant: read it, check it, and hand it on with the place of everything in it."""
+
+from __future__ import annotations
+
+import hashlib
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from pathlib import Path
+
+from commission.description.assumptions import Assumption, assumptions_for
+from commission.description.checking import bounded, validate
+from commission.description.meaning import Looked, problems_of_meaning
+from commission.description.model import Plant, System
+from commission.description.positions import DescriptionError, KeyPath, Position, Positions
+from commission.description.reading import read_yaml
+from commission.errors import InputError, Problem, nearest
+from commission.quantities import Pressure
+
+PLANT_FILE = "plant.yaml"
+
+
+@dataclass(frozen=True)
+class LoadedPlant:
+    """A description that was read and checked.
+
+    `digest` is the SHA-256 (hexadecimal) over the names and bytes of the description's files, `files` their names.
+    """
+
+    plant: Plant
+    folder: Path
+    digest: str
+    files: tuple[str, ...]
+    positions: Positions
+    barometric_pressure: float
+    """Air pressure of the site in Pa: as stated, or from the altitude by ISO 2533."""
+
+    @cached_property
+    def _by_text(self) -> Mapping[str, Position]:
+        return self.positions.by_text()
+
+    def system(self, identity: str) -> System:
+        """The system with this id.
+
+        Raises:
+            InputError: there is no such system, with the nearest id.
+        """
+        systems = self.plant.systems
+        if identity not in systems:
+            raise InputError(
+                Problem(
+                    "no system has this id",
+                    file=PLANT_FILE,
+                    value=identity,
+                    allowed=", ".join(systems),
+                    nearest=nearest(identity, systems),
+                )
+            )
+        return systems[identity]
+
+    def where(self, path: str | KeyPath) -> Position:
+        """The place of the value at a key path such as `systems.cold-room.charge`, or of what holds it."""
+        if not isinstance(path, str):
+            return self.positions.mark(path).value
+        while path not in self._by_text and "." in path:
+            path = path.rpartition(".")[0]
+        return self._by_text.get(path, self.positions.mark(()).value)
+
+    def assumptions(self, identity: str) -> Mapping[str, Assumption]:
+        """The assumption list of one system, own values with their place in the description."""
+        return assumptions_for(self.system(identity), self.positions, ("systems", identity))
+
+    def absolute(self, pressure: Pressure) -> float:
+        """A written pressure in Pa absolute at the barometric pressure of this site."""
+        return pressure.absolute(self.barometric_pressure)
+
+
+def load_plant(folder: Path | str) -> LoadedPlant:
+    """Read and check the description in `folder`.
+
+    Raises:
+        DescriptionError: with all problems of the stage that failed: reading, then shape, then meaning.
+    """
+    folder = Path(folder)
+    if not folder.is_dir():
+        raise DescriptionError(
+            Problem("there is no such folder", file=str(folder), allowed=f"a folder that holds {PLANT_FILE}")
+        )
+    read = read_yaml(folder / PLANT_FILE, PLANT_FILE)
+    plant = validate(Plant, read.data, read.positions, also=read.problems)
+    barometric_pressure = site_pressure(plant)
+    found = problems_of_meaning(Looked(plant, read.positions, barometric_pressure))
+    if found:
+        raise DescriptionError(*bounded(found))
+    contents = {PLANT_FILE: read.content}
+    return LoadedPlant(plant, folder, digest_of(contents), tuple(contents), read.positions, barometric_pressure)
+
+
+def site_pressure(plant: Plant) -> float:
+    """Barometric pressure of the site in Pa, from its altitude."""
+    return float(101325.0 * (1 - 2.25577e-5 * plant.plant.altitude) ** 5.25588)
+
+
+def digest_of(contents: Mapping[str, bytes]) -> str:
+    """SHA-256 over file names and contents, in the order of the names; a length before each keeps them apart."""
+    total = hashlib.sha256()
+    for name in sorted(contents):
+        for part in (name.encode(), contents[name]):
+            total.update(len(part).to_bytes(8, "big") + part)
+    return total.hexdigest()
