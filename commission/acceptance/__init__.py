@@ -1,0 +1,1 @@
+"""What was promised, what is expected, what was read: uncertainty, decision, frozen sheets, verdicts."""
