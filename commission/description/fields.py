@@ -3,13 +3,23 @@
 from __future__ import annotations
 
 import datetime as dt
+import re
 from collections.abc import Callable
+from dataclasses import dataclass
 from typing import Annotated, Any
 
 from pydantic import BeforeValidator, WithJsonSchema
 from pydantic_core import PydanticCustomError
 
 from commission.quantities import Kind, Pressure, QuantityError, describe, parse, parse_pressure
+
+
+@dataclass(frozen=True, slots=True)
+class Meaning:
+    """What a field holds, for the reference of keys: its kind of quantity or its form, in words."""
+
+    kind: Kind | None
+    words: str
 
 
 def _refuse(error: QuantityError) -> PydanticCustomError:
@@ -35,32 +45,78 @@ def _text_only(kind: Kind, read: Callable[[str], Any]) -> Callable[[Any], Any]:
     return convert
 
 
-def _quantity(kind: Kind) -> tuple[BeforeValidator, WithJsonSchema]:
+def _within(kind: Kind, low: str | None, high: str | None, more_than_nothing: bool) -> Callable[[str], float]:
+    """A reader that also holds the value to the range in which such a thing can be; the ends are written as a
+    person would write them, so that the message can show them."""
+    least = parse(low, kind) if low is not None else None
+    most = parse(high, kind) if high is not None else None
+
+    def read(text: str) -> float:
+        value = parse(text, kind)
+        if more_than_nothing and value <= 0:
+            raise _out_of_range("this must be more than nothing", describe(kind))
+        if (least is not None and value < least) or (most is not None and value > most):
+            limits = " ".join(f"{word} {end}" for word, end in (("from", low), ("up to", high)) if end is not None)
+            raise _out_of_range("this is outside what can be", limits)
+        return value
+
+    return read
+
+
+def _out_of_range(message: str, allowed: str) -> PydanticCustomError:
+    return PydanticCustomError("quantity", "{message}", {"message": message, "allowed": allowed})
+
+
+def _quantity(
+    kind: Kind, low: str | None = None, high: str | None = None, *, positive: bool = False
+) -> tuple[BeforeValidator, WithJsonSchema, Meaning]:
+    types = ["string", "number"] if kind is Kind.NUMBER else "string"
+    words = describe(kind)
+    if low is not None and high is not None:
+        words += f"; from {low} to {high}"
     return (
-        BeforeValidator(_text_only(kind, lambda text: parse(text, kind))),
-        WithJsonSchema({"type": ["string", "number"], "description": describe(kind)}),
+        BeforeValidator(_text_only(kind, _within(kind, low, high, positive))),
+        WithJsonSchema({"type": types, "description": words}),
+        Meaning(kind, words),
     )
 
 
-Temperature = Annotated[float, *_quantity(Kind.TEMPERATURE)]
-TemperatureDifference = Annotated[float, *_quantity(Kind.TEMPERATURE_DIFFERENCE)]
-Power = Annotated[float, *_quantity(Kind.POWER)]
-Mass = Annotated[float, *_quantity(Kind.MASS)]
-Volume = Annotated[float, *_quantity(Kind.VOLUME)]
-Length = Annotated[float, *_quantity(Kind.LENGTH)]
-Area = Annotated[float, *_quantity(Kind.AREA)]
-VolumeFlow = Annotated[float, *_quantity(Kind.VOLUME_FLOW)]
-Conductance = Annotated[float, *_quantity(Kind.CONDUCTANCE)]
-Current = Annotated[float, *_quantity(Kind.CURRENT)]
-Voltage = Annotated[float, *_quantity(Kind.VOLTAGE)]
-Speed = Annotated[float, *_quantity(Kind.SPEED)]
-Duration = Annotated[float, *_quantity(Kind.DURATION)]
-Ratio = Annotated[float, *_quantity(Kind.RATIO)]
+Temperature = Annotated[float, *_quantity(Kind.TEMPERATURE, "-150 °C", "400 °C")]
+TemperatureDifference = Annotated[float, *_quantity(Kind.TEMPERATURE_DIFFERENCE, "0 K", "200 K")]
+PressureDifference = Annotated[float, *_quantity(Kind.PRESSURE_DIFFERENCE, positive=True)]
+Power = Annotated[float, *_quantity(Kind.POWER, "0 W", "1000 MW")]
+Capacity = Annotated[float, *_quantity(Kind.POWER, positive=True)]
+Energy = Annotated[float, *_quantity(Kind.ENERGY, positive=True)]
+Mass = Annotated[float, *_quantity(Kind.MASS, positive=True)]
+MassFlow = Annotated[float, *_quantity(Kind.MASS_FLOW, positive=True)]
+Volume = Annotated[float, *_quantity(Kind.VOLUME, positive=True)]
+Altitude = Annotated[float, *_quantity(Kind.LENGTH, "-450 m", "6000 m")]
+Length = Annotated[float, *_quantity(Kind.LENGTH, positive=True)]
+Area = Annotated[float, *_quantity(Kind.AREA, positive=True)]
+VolumeFlow = Annotated[float, *_quantity(Kind.VOLUME_FLOW, positive=True)]
+Conductance = Annotated[float, *_quantity(Kind.CONDUCTANCE, positive=True)]
+Current = Annotated[float, *_quantity(Kind.CURRENT, positive=True)]
+Voltage = Annotated[float, *_quantity(Kind.VOLTAGE, positive=True)]
+Speed = Annotated[float, *_quantity(Kind.SPEED, positive=True)]
+Duration = Annotated[float, *_quantity(Kind.DURATION, positive=True)]
+Ratio = Annotated[float, *_quantity(Kind.RATIO, "0 %", "100 %")]
 Number = Annotated[float, *_quantity(Kind.NUMBER)]
+PositiveNumber = Annotated[float, *_quantity(Kind.NUMBER, positive=True)]
+SoundLevel = Annotated[float, *_quantity(Kind.SOUND_LEVEL, "0 dB(A)", "150 dB(A)")]
+
+
+def _pressure(text: str) -> Pressure:
+    pressure = parse_pressure(text)
+    if pressure.pascal > 1e8:
+        raise _out_of_range("this is outside what can be", "up to 1000 bar")
+    return pressure
+
+
 GaugeOrAbsolute = Annotated[
     Pressure,
-    BeforeValidator(_text_only(Kind.PRESSURE, parse_pressure)),
+    BeforeValidator(_text_only(Kind.PRESSURE, _pressure)),
     WithJsonSchema({"type": "string", "description": describe(Kind.PRESSURE)}),
+    Meaning(Kind.PRESSURE, describe(Kind.PRESSURE)),
 ]
 
 
@@ -72,15 +128,62 @@ def _yes_no(value: Any) -> bool:
     raise PydanticCustomError("yes_no", "{message}", {"message": "yes or no is wanted here", "allowed": "yes, no"})
 
 
-YesNo = Annotated[bool, BeforeValidator(_yes_no), WithJsonSchema({"type": ["boolean", "string"]})]
+YesNo = Annotated[
+    bool,
+    BeforeValidator(_yes_no),
+    WithJsonSchema({"enum": ["yes", "no", "true", "false", True, False]}),
+    Meaning(None, "yes or no"),
+]
 
 
 def _date(value: Any) -> dt.date:
-    try:
-        return dt.date.fromisoformat(value)
-    except (TypeError, ValueError):
-        message = {"message": "a date is wanted here", "allowed": "a date as year-month-day, for example 2027-03-31"}
-        raise PydanticCustomError("date", "{message}", message) from None
+    message = {"message": "a date is wanted here", "allowed": "a date as year-month-day, for example 2027-03-31"}
+    if isinstance(value, str) and re.fullmatch(r"[0-9]{4}-[0-9]{2}-[0-9]{2}", value):
+        try:
+            return dt.date.fromisoformat(value)
+        except ValueError:
+            message["message"] = "there is no such day"
+    raise PydanticCustomError("date", "{message}", message)
 
 
-Date = Annotated[dt.date, BeforeValidator(_date), WithJsonSchema({"type": "string", "format": "date"})]
+Date = Annotated[
+    dt.date,
+    BeforeValidator(_date),
+    WithJsonSchema({"type": "string", "format": "date"}),
+    Meaning(None, "a date as year-month-day"),
+]
+
+
+def _count(value: Any) -> int:
+    if isinstance(value, str) and re.fullmatch(r"[0-9]{1,6}", value) and int(value) > 0:
+        return int(value)
+    allowed = {"message": "a whole number is wanted here", "allowed": "1, 2, 3 and so on"}
+    raise PydanticCustomError("quantity", "{message}", allowed)
+
+
+Count = Annotated[
+    int,
+    BeforeValidator(_count),
+    WithJsonSchema({"type": ["integer", "string"], "minimum": 1}),
+    Meaning(None, "a whole number, 1 or more"),
+]
+
+
+def _relative_file(value: Any) -> str:
+    """A file inside the plant's folder: never an absolute path and never upwards."""
+    allowed = "a path inside the plant's folder with forward slashes, such as documents/unit.pdf"
+    if isinstance(value, str) and value and value.isprintable() and len(value) <= 250:
+        parts = value.split("/")
+        if not any(p in ("", ".", "..") for p in parts) and not any(c in value for c in '\\:<>|"*?'):
+            return value
+    raise PydanticCustomError(
+        "quantity", "{message}", {"message": "this cannot be the place of a file here", "allowed": allowed}
+    )
+
+
+FileName = Annotated[
+    str,
+    BeforeValidator(_relative_file),
+    WithJsonSchema({"type": "string"}),
+    Meaning(None, "a path inside the plant's folder"),
+]

@@ -14,6 +14,10 @@ MEASURED: Mapping[str, tuple[Kind, Kind]] = MappingProxyType(
         "temperature difference": (Kind.TEMPERATURE_DIFFERENCE, Kind.TEMPERATURE_DIFFERENCE),
         "pressure": (Kind.PRESSURE, Kind.PRESSURE_DIFFERENCE),
         "vacuum": (Kind.PRESSURE, Kind.PRESSURE_DIFFERENCE),
+        "pressure difference": (Kind.PRESSURE_DIFFERENCE, Kind.PRESSURE_DIFFERENCE),
+        "heat": (Kind.POWER, Kind.POWER),
+        "energy": (Kind.ENERGY, Kind.ENERGY),
+        "velocity": (Kind.VELOCITY, Kind.VELOCITY),
         "electric power": (Kind.POWER, Kind.POWER),
         "current": (Kind.CURRENT, Kind.CURRENT),
         "voltage": (Kind.VOLTAGE, Kind.VOLTAGE),
@@ -46,6 +50,7 @@ class ResolvedInstrument:
     accuracy_of_reading: float | None
     accuracy_absolute: float | None
     resolution: float | None
+    drift_per_year: float | None = None
 
     @property
     def span(self) -> float | None:

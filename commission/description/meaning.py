@@ -77,6 +77,7 @@ def _instrument(looked: Looked, at: KeyPath, instrument: Instrument) -> Iterator
     small = (
         ((*at, "accuracy", "absolute"), accuracy.absolute if accuracy else None),
         ((*at, "resolution"), instrument.resolution),
+        ((*at, "drift_per_year"), instrument.drift_per_year),
     )
     for path, text in small:
         if text is not None:

@@ -67,9 +67,7 @@ def parse_number(text: str) -> tuple[float, str]:
     sign, digits, exponent, rest = match.groups()
     if "," in digits and len(digits.split(",")[1]) == 3:
         raise QuantityError(
-            Problem(
-                "a comma before three digits can mean thousands or decimals; write 1200 or 1.2 plainly", value=text
-            )
+            Problem("a comma before three digits can mean thousands or decimals; write 1200 or 1.2 plainly", value=text)
         )
     if rest[:1] in {",", "."} or rest[:1].isdigit() or re.match(r"[eE][+-]?\d", rest):
         raise QuantityError(Problem("write the number without digit grouping, such as 1200 or 1.2", value=text))
