@@ -1,0 +1,105 @@
+"""All safety figures of one system in one call."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from commission.quantities import Explained, Input, Kind
+from commission.safety.charge import SpaceCharge, charge_limits, lowest_limit, smallest_space
+from commission.safety.evacuation import evacuation_figures
+from commission.safety.facts import Fact, fact
+from commission.safety.figure import TITLES, Collector, Figure, Figures, fact_input
+from commission.safety.formulas import dispersal_charge
+from commission.safety.leaks import leak_duty
+from commission.safety.pressures import design_pressures, limit_devices, pressure_test_figures, standstill
+from commission.safety.register import substance_of
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
+    from commission.safety.substance import Substance
+
+
+def safety_figures(loaded: LoadedPlant, system_id: str, model: SystemModel | None = None) -> Figures:
+    """Every figure of `TITLES` for one system: found, or with the reason why not.
+
+    `model` is the fitted model of the system; without it, figures that need an expected reading are not calculated.
+
+    Raises:
+        InputError: no such system or refrigerant.
+    """
+    from commission.properties import refrigerant
+
+    system = loaded.system(system_id)
+    fluid = refrigerant(system.refrigerant)
+    substance = substance_of(fluid)
+    out = Collector()
+    pressure_test_figures(loaded, system_id, out)
+    standstill(loaded, system_id, fluid, out)
+    design_pressures(loaded, system, fluid, out)
+    limit_devices(loaded, system_id, fluid, model, out)
+    evacuation_figures(loaded, system_id, substance, out)
+    _charge(charge_limits(loaded, system_id, substance), substance, out)
+    _leaks(loaded, system_id, substance, out)
+    for key in TITLES:
+        if key not in out.found and key not in out.missing:
+            raise AssertionError(f"no figure and no reason for {key}")
+    return out.finish()
+
+
+def _charge(spaces: tuple[SpaceCharge, ...], substance: Substance, out: Collector) -> None:
+    found = lowest_limit(spaces)
+    if found is None:
+        out.refuse("no document gives a limit in kilograms for the spaces of this system", "room_charge_limit")
+    else:
+        space, limit = found
+        assert limit.value is not None
+        title, kind = TITLES["room_charge_limit"]
+        note = f"{space.name}: {limit.rule}; {space.advice}"
+        out.found["room_charge_limit"] = Figure(
+            "room_charge_limit", title, kind, limit.value, limit.document, limit.edition, limit.mark, note
+        )
+    _concentration(smallest_space(spaces), substance, out)
+
+
+def _concentration(space: SpaceCharge | None, substance: Substance, out: Collector) -> None:
+    rule = Fact("dispersal", 0.0, Kind.DENSITY, "definition", "", "C", "charge over volume, evenly mixed")
+    lfl = substance.lfl
+    alarm = fact("flammable_alarm_share")
+    if lfl is None:
+        out.refuse("the refrigerant has no lower flammability limit", "leak_share_of_lfl", "flammable_alarm_level")
+    else:
+        value = dispersal_charge(alarm.value * lfl.value, 1.0)
+        inputs = (Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"), fact_input(alarm))
+        out.add("flammable_alarm_level", value, "safety_rule_figure", inputs, alarm)
+    if space is None or space.concentration is None:
+        out.refuse("no closed space with floor area, height and charge stated", "leak_concentration")
+        if lfl is not None:
+            out.refuse("no closed space with floor area, height and charge stated", "leak_share_of_lfl")
+        return
+    spread: Explained = space.concentration
+    note = f"{space.name}; a leak is never evenly mixed: near the leak and the floor it is denser"
+    out.add("leak_concentration", spread.value, spread.method, spread.inputs, rule, note=note)
+    if lfl is not None:
+        inputs = (Input("concentration", spread.value, Kind.DENSITY, "calculated"),
+                  Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"))  # fmt: skip
+        out.add("leak_share_of_lfl", spread.value / lfl.value, "leak_share", inputs, rule, mark=lfl.mark, note=note)
+
+
+def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Collector) -> None:
+    system = loaded.system(system_id)
+    duty = leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, system.charge, system.sealed, system.duty)
+    rule = Fact("leak_check", 0.0, Kind.NUMBER, duty.document, duty.edition, duty.mark, duty.reason)
+    if system.charge is None or substance.gwp is None:
+        why = "the charge is not stated" if system.charge is None else "the register has no GWP"
+        out.refuse(why, "co2_equivalent")
+    else:
+        gwp = substance.gwp
+        inputs = (Input("charge", system.charge, Kind.MASS, str(loaded.where(f"systems.{system_id}.charge"))),
+                  Input("GWP", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"))  # fmt: skip
+        out.add("co2_equivalent", system.charge * gwp.value, "co2_equivalent", inputs, rule, mark=gwp.mark)
+    if duty.months is None:
+        out.refuse(duty.reason, "leak_check_months")
+    else:
+        inputs = () if duty.measure is None else duty.measure.inputs
+        out.add("leak_check_months", float(duty.months), "leak_check_interval", inputs, rule)

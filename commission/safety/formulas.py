@@ -1,0 +1,104 @@
+"""Formulas of safety standards as plain functions in SI; each names its document. No plant, no data files."""
+
+from __future__ import annotations
+
+import math
+
+GAS_CONSTANT = 8.314462618  # J/(mol K), exact by the 2019 SI
+
+
+def nitrogen_pressure(pressure: float, temperature: float, later_temperature: float) -> float:
+    """The pressure that dry nitrogen shut in at `pressure` (Pa absolute) and `temperature` shows at another temperature.
+
+    Constant volume; virial equation p = ρRT(1 + Bρ) with B of nitrogen in cm³/mol = −4 − 56x − 12x², x = 298.15/T − 1
+    (CRC Handbook, virial coefficients of selected gases; from memory, within 0.02 % of the equation of state of Span et
+    al. 2000 up to 35 bar between 0 and 40 °C). The ideal gas, p·T2/T1, is 0.05 % per kelvin off at 30 bar.
+
+    Args: pressure in Pa absolute, temperatures in K. Returns: Pa absolute.
+
+    Raises:
+        ValueError: a pressure or temperature that is not positive, or a pressure above 6 MPa where this B does not do.
+    """
+    if not (0 < pressure <= 6e6 and temperature > 200 and later_temperature > 200):
+        raise ValueError(f"no nitrogen hold at {pressure} Pa and {temperature} to {later_temperature} K")
+    rt = GAS_CONSTANT * temperature
+    b = _nitrogen_b(temperature)
+    # positive root of Bρ² + ρ − p/RT = 0, in the form that stays sound as B crosses zero
+    density = 2 * pressure / rt / (1 + math.sqrt(1 + 4 * b * pressure / rt))
+    return density * GAS_CONSTANT * later_temperature * (1 + _nitrogen_b(later_temperature) * density)
+
+
+def _nitrogen_b(temperature: float) -> float:
+    """Second virial coefficient of nitrogen in m³/mol."""
+    x = 298.15 / temperature - 1
+    return (-4 - 56 * x - 12 * x * x) * 1e-6
+
+
+def pressure_steps(pre_test: float, test: float, first_share: float = 0.5, step: float = 0.1) -> tuple[float, ...]:
+    """Gauge pressures of a site pressure test in Pa: pre-test, first share of the test pressure, then equal steps.
+
+    RSIF IF-09 1.3.1: pre-test at 1.5 bar, then 50 %, then steps of about 10 %. A step that lies below the one before it is left out.
+    """
+    count = round((1 - first_share) / step)
+    shares = [first_share + (1 - first_share) * i / count for i in range(count + 1)]
+    steps = [pre_test]
+    for share in shares:
+        if share * test > steps[-1]:
+            steps.append(share * test)
+    return tuple(steps)
+
+
+def dispersal_charge(limit: float, volume: float) -> float:
+    """Charge in kg that a room of `volume` m³ may receive at a concentration limit in kg/m³ (EN 378-1 annex C)."""
+    return limit * volume
+
+
+def flammable_cap(lfl: float, volume: float, factor: float = 1.0) -> float:
+    """m1, m2 or m3 in kg: `volume` 4, 26 or 130 m³ times LFL in kg/m³, times 1.5 for class 2L (EN 378-1 annex C)."""
+    return volume * lfl * factor
+
+
+def comfort_charge(lfl: float, height: float, area: float) -> float:
+    """Largest charge in kg for human comfort: 2.5·LFL^(5/4)·h0·√A (EN 378-1 C.2.1), LFL kg/m³, h0 m, A m²."""
+    return 2.5 * lfl**1.25 * height * math.sqrt(area)
+
+
+def comfort_area(charge: float, lfl: float, height: float) -> float:
+    """Smallest floor area in m² for a charge in kg: (m / (2.5·LFL^(5/4)·h0))² (EN 378-1 C.2.1)."""
+    return (charge / (2.5 * lfl**1.25 * height)) ** 2
+
+
+def emergency_ventilation_en378(charge: float) -> float:
+    """Emergency ventilation of a machinery room in m³/s: 0.014·m^(2/3), m in kg (EN 378-3:2016, 5.13)."""
+    return 0.014 * charge ** (2 / 3)
+
+
+def emergency_ventilation_ashrae15(charge: float) -> float:
+    """Emergency ventilation of a machinery room in m³/s: 0.070·√G, G in kg (ASHRAE 15, 8.11; not A2L or B2L)."""
+    return 0.070 * math.sqrt(charge)
+
+
+def co2_equivalent(charge: float, gwp: float) -> float:
+    """CO₂ equivalent of a charge in kg."""
+    return charge * gwp
+
+
+def annualised_leak_rate(added: float, full_charge: float, days_since_last_addition: float) -> float:
+    """Leak rate as a share of the full charge in a year: added/full·365/min(365, days) (40 CFR 82.152, annualizing).
+
+    Raises:
+        ValueError: no full charge, or not a positive number of days.
+    """
+    if not (full_charge > 0 and days_since_last_addition > 0):
+        raise ValueError(f"no leak rate for a full charge of {full_charge} kg over {days_since_last_addition} days")
+    return added / full_charge * 365 / min(365.0, days_since_last_addition)
+
+
+def relief_flow_vessel(area: float, latent_heat: float, heat_flux: float = 10e3) -> float:
+    """Relief mass flow in kg/s of a vessel heated from outside: φ·A/h_vap, φ = 10 kW/m² (EN 13136)."""
+    return heat_flux * area / latent_heat
+
+
+def concentration(ppm: float, molar_mass: float) -> float:
+    """Mass concentration in kg/m³ at 25 °C and 101.325 kPa of a volume share in ppm; molar mass in kg/mol."""
+    return ppm * 1e-6 * molar_mass * 101325 / (GAS_CONSTANT * 298.15)
