@@ -1,0 +1,184 @@
+"""The equation of state behind one refrigerant: calls at (density, temperature) and Newton iterations on them.
+
+Density and temperature are the natural variables of a Helmholtz equation, so such a call needs no iteration, cannot fail,
+and gives all first derivatives for a few microseconds more (Span, Multiparameter Equations of State, 2000, chapter 3).
+"""
+
+from __future__ import annotations
+
+import math
+import threading
+from dataclasses import dataclass
+from typing import Any
+
+from commission.properties.coolprop import load
+from commission.properties.errors import PropertyRangeError, bar, celsius
+from commission.properties.lines import FluidData
+
+SMALL_STEP = 1e-6  # a Newton step this small is closed by the first-order correction: the rest is 1e-12
+MAX_STEPS = 50
+
+
+@dataclass(slots=True)
+class Point:
+    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K)."""
+
+    rho: float
+    T: float
+    p: float
+    h: float
+    s: float
+    p_rho: float
+    p_T: float
+    cv: float
+
+    @property
+    def h_rho(self) -> float:
+        """dh/drho at constant temperature."""
+        return (self.p_rho - self.T * self.p_T / self.rho) / self.rho
+
+    @property
+    def h_T(self) -> float:
+        """dh/dT at constant density."""
+        return self.cv + self.p_T / self.rho
+
+    @property
+    def s_rho(self) -> float:
+        """ds/drho at constant temperature (a Maxwell relation)."""
+        return -self.p_T / self.rho**2
+
+    @property
+    def s_T(self) -> float:
+        """ds/dT at constant density."""
+        return self.cv / self.T
+
+    @property
+    def cp(self) -> float:
+        """Specific heat at constant pressure."""
+        return self.cv + self.T * self.p_T**2 / (self.rho**2 * self.p_rho)
+
+
+class _PerThread(threading.local):
+    """One equation-of-state object for each thread, since a shared one gives silently wrong values."""
+
+    def __init__(self, data: FluidData) -> None:
+        self.cp: Any = load()
+        self.state: Any = self.cp.AbstractState("HEOS", "&".join(data.fluids))
+        if len(data.fluids) > 1:
+            self.state.set_mole_fractions(list(data.mole_fractions))
+        self.state.specify_phase(self.cp.iphase_gas)  # any single phase: p, h, s follow from density alone
+        self.inputs = self.cp.DmassT_INPUTS
+        self.by_rho = (self.cp.iP, self.cp.iDmass, self.cp.iT)
+        self.by_T = (self.cp.iP, self.cp.iT, self.cp.iDmass)
+        self.calls = 0
+
+
+class Equation:
+    """The equation of state of one refrigerant, with the enthalpy and entropy reference of its data."""
+
+    def __init__(self, data: FluidData) -> None:
+        self.data = data
+        self._local = _PerThread(data)
+
+    @property
+    def calls(self) -> int:
+        """How often this thread has evaluated the equation of state."""
+        return self._local.calls
+
+    def at(self, rho: float, T: float) -> Point:
+        """Everything at density `rho` (kg/m3) and temperature `T` (K); no range is checked here."""
+        local = self._local
+        local.calls += 1
+        state = local.state
+        state.update(local.inputs, rho, T)
+        return Point(
+            rho,
+            T,
+            state.p(),
+            state.hmass() + self.data.h_offset,
+            state.smass() + self.data.s_offset,
+            state.first_partial_deriv(*local.by_rho),
+            state.first_partial_deriv(*local.by_T),
+            state.cvmass(),
+        )
+
+    def density(self, T: float, p: float, start: float) -> Point:
+        """The single-phase point at (T, p) reached from density `start`, which must lie on the right side.
+
+        Raises:
+            PropertyRangeError: no mechanically stable density (dp/drho > 0) found.
+        """
+        rho = start
+        for _ in range(MAX_STEPS):
+            point = self.at(rho, T)
+            if not point.p_rho > 0:
+                break
+            step = (p - point.p) / point.p_rho
+            if abs(step) < SMALL_STEP * rho:
+                return _corrected(point, step, 0.0)
+            rho += max(-0.5 * rho, min(0.5 * rho, step))
+        raise self._lost(T, p)
+
+    def solve(self, p: float, name: str, value: float, rho: float, T: float) -> Point:
+        """The single-phase point with pressure `p` and `name` ('h' or 's') equal to `value`, from (rho, T).
+
+        Raises:
+            PropertyRangeError: no convergence to a mechanically stable state.
+        """
+        entropy = name == "s"
+        for _ in range(MAX_STEPS):
+            point = self.at(rho, T)
+            if not point.p_rho > 0 or not point.cv > 0:
+                break
+            if entropy:
+                miss, by_rho, by_T = value - point.s, point.s_rho, point.s_T
+            else:
+                miss, by_rho, by_T = value - point.h, point.h_rho, point.h_T
+            determinant = point.p_rho * by_T - point.p_T * by_rho
+            d_rho = ((p - point.p) * by_T - point.p_T * miss) / determinant
+            d_T = (point.p_rho * miss - (p - point.p) * by_rho) / determinant
+            if abs(d_rho) < SMALL_STEP * rho and abs(d_T) < SMALL_STEP * T:
+                return _corrected(point, d_rho, d_T)
+            share = min(1.0, 0.4 * rho / max(abs(d_rho), 1e-300), 0.15 * T / max(abs(d_T), 1e-300))
+            rho += share * d_rho
+            T += share * d_T
+        raise self._lost(T, p)
+
+    def dense(self, T: float, p: float, largest: float) -> Point:
+        """The point at (T, p) above the critical pressure, where pressure rises with density: Newton held in a bracket.
+
+        `largest` is a density (kg/m3) that certainly has a pressure above `p` at `T`, or the densest state known.
+
+        Raises:
+            PropertyRangeError: `p` is not reached at any density known.
+        """
+        low, high = 0.0, largest
+        rho = min(p * self.data.molar_mass / (8.314462618 * T), 0.5 * largest) if T > self.data.T_critical else largest
+        for _ in range(4 * MAX_STEPS):
+            point = self.at(rho, T)
+            if point.p > p:
+                high = min(high, rho)
+            else:
+                low = max(low, rho)
+            step = (p - point.p) / point.p_rho if point.p_rho > 0 else math.inf
+            if abs(step) < SMALL_STEP * rho:
+                return _corrected(point, step, 0.0)
+            rho = rho + step if low < rho + step < high else (low + high) / 2
+            if high - low < 1e-12 * largest:
+                break
+        raise self._lost(T, p)
+
+    def _lost(self, T: float, p: float) -> PropertyRangeError:
+        return PropertyRangeError(
+            self.data.refrigerant, f"no stable single-phase state found near {celsius(T)} and {bar(p)}"
+        )
+
+
+def _corrected(point: Point, d_rho: float, d_T: float) -> Point:
+    """The point after a last small step, values to first order."""
+    point.p += point.p_rho * d_rho + point.p_T * d_T
+    point.h += point.h_rho * d_rho + point.h_T * d_T
+    point.s += point.s_rho * d_rho + point.s_T * d_T
+    point.rho += d_rho
+    point.T += d_T
+    return point

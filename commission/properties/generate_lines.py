@@ -1,0 +1,183 @@
+"""Makes the data files under `lines/`: saturation lines, limits and two-phase tables of every modelled refrigerant.
+
+Run `python -m commission.properties.generate_lines` after an update of CoolProp; it writes one file per refrigerant.
+The same functions make the data in memory where the CoolProp at hand does not agree with the files.
+"""
+
+from __future__ import annotations
+
+import json
+import math
+import sys
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+from numpy.polynomial import chebyshev
+
+from commission.errors import NotCalculatedError
+from commission.properties import flash, lines
+from commission.properties.coolprop import load, version
+from commission.properties.isofugacity import Array, Equilibrium, Phases
+
+TERMS = 33
+PRESSURE_NODES, FRACTION_NODES, FLASH_NODES = 14, 10, 12
+ATMOSPHERE = 101325.0
+LOWEST_REDUCED = 0.5  # of the critical temperature: below any refrigerating duty of the fluid
+PURE_TOP, BLEND_MARGIN = 0.9995, 2.0  # share of Tc, and K below Tc: nearer, the two phases merge in the last digits
+IIR_TEMPERATURE, IIR_ENTHALPY, IIR_ENTROPY = 273.15, 200e3, 1000.0
+
+
+def build(
+    refrigerant: str, fluids: tuple[str, ...], mass_fractions: tuple[float, ...], critical: tuple[float, float]
+) -> lines.FluidData:
+    """All data of one refrigerant from the equation of state: about 50 ms for a pure fluid, up to 2 s for a blend.
+
+    `fluids` are CoolProp's names, `critical` is (K, Pa).
+
+    Raises:
+        NotCalculatedError: no phase equilibrium found somewhere between the limits.
+    """
+    cp = load()
+    states = [cp.AbstractState("HEOS", name) for name in fluids]
+    moles = np.array(mass_fractions) / np.array([s.molar_mass() for s in states])
+    fractions = tuple((moles / moles.sum()).tolist())
+    phases = Phases(fluids, fractions)
+    Tc, pc = critical
+    # the equation of a component below its triple point is an extrapolation, so a blend ends at the highest of them
+    T_triple = max(s.Tmin() for s in states)
+    T_low = max(T_triple, LOWEST_REDUCED * Tc)
+    T_high = PURE_TOP * Tc if len(fluids) == 1 else Tc - BLEND_MARGIN
+    dew, bubble = (_line(phases, incipient, Tc, T_low, T_high) for incipient in ("liquid", "vapour"))
+    datum = bubble.row(IIR_TEMPERATURE)
+    offsets = (IIR_ENTHALPY - datum[1], IIR_ENTROPY - datum[2])
+    for line in (dew, bubble):
+        line.coefficients[1:3, 0] += offsets
+    state = phases.vapour
+    boiling = [
+        line.temperature(ATMOSPHERE) if math.exp(line.ln_p_range[0]) < ATMOSPHERE else None for line in (bubble, dew)
+    ]
+    return lines.FluidData(
+        refrigerant=refrigerant,
+        property_source=f"CoolProp {version()}",
+        fluids=fluids,
+        mole_fractions=fractions,
+        molar_mass=state.molar_mass(),
+        T_critical=Tc,
+        p_critical=pc,
+        T_triple=T_triple,
+        T_max=state.Tmax(),
+        p_max=state.pmax(),
+        T_low=T_low,
+        T_high=T_high,
+        h_offset=offsets[0],
+        s_offset=offsets[1],
+        boiling_bubble=boiling[0],
+        boiling_dew=boiling[1],
+        dew=dew,
+        bubble=bubble,
+        two_phase=_two_phase(phases, pc, dew, bubble) if len(fluids) > 1 else None,
+    )
+
+
+def _line(phases: Phases, incipient: str, Tc: float, T_low: float, T_high: float) -> lines.Line:
+    low, high = math.sqrt(1 - T_high / Tc), math.sqrt(1 - T_low / Tc)
+    theta = (high - low) / 2 * lines.nodes(TERMS) + (high + low) / 2
+    temperatures = Tc * (1 - theta**2)
+    values = np.empty((4, TERMS))
+    for k, point in enumerate(_trace(phases, incipient, temperatures)):
+        own = "liquid" if incipient == "vapour" else "vapour"
+        _, h, s, rho = phases.properties(point.T, getattr(point, f"rho_{own}"), own)
+        values[:, k] = math.log(point.p), h, s, math.log(rho)
+    return lines.Line(Tc, T_low, T_high, lines.series_at_nodes(values))
+
+
+def _trace(phases: Phases, incipient: str, temperatures: Array) -> list[Equilibrium]:
+    """Equilibria at rising `temperatures`, each started from the two before, with extra steps where they are needed."""
+    found: list[Equilibrium] = []
+    history: list[tuple[float, Array]] = []
+    for T in temperatures:
+        point, u = _reach(phases, incipient, float(T), history)
+        history.append((float(T), u))
+        found.append(point)
+    return found
+
+
+def _reach(
+    phases: Phases, incipient: str, T: float, history: list[tuple[float, Array]], depth: int = 0
+) -> tuple[Equilibrium, Array]:
+    start = None
+    if len(history) > 1:
+        (Ta, a), (Tb, b) = history[-2:]
+        start = b + (b - a) * (T - Tb) / (Tb - Ta)
+    elif history:
+        start = history[-1][1]
+    try:
+        return phases.solve(T, incipient, start)
+    except (NotCalculatedError, np.linalg.LinAlgError):
+        if depth == 6 or not history:
+            raise
+        middle = (history[-1][0] + T) / 2
+        history.append((middle, _reach(phases, incipient, middle, history, depth + 1)[1]))
+        return _reach(phases, incipient, T, history, depth + 1)
+
+
+def _two_phase(phases: Phases, pc: float, dew: lines.Line, bubble: lines.Line) -> lines.TwoPhase:
+    """Tables over pressure and enthalpy fraction; see `lines.TwoPhase`."""
+    p_low, p_high = math.exp(bubble.ln_p_range[0]), math.exp(dew.ln_p_range[1])
+    low, high = math.sqrt(math.log(pc / p_high)), math.sqrt(math.log(pc / p_low))
+    w = (high - low) / 2 * lines.nodes(PRESSURE_NODES) + (high + low) / 2
+    tables = np.array([_isobar(phases, p, bubble) for p in pc * np.exp(-(w**2))])  # pressure, table, fraction
+    in_fraction = lines.series_at_nodes(tables)
+    both = np.moveaxis(lines.series_at_nodes(np.moveaxis(in_fraction, 0, -1)), -1, 0)
+    return lines.TwoPhase(pc, low, high, both[:, 0], both[:, 1], both[:, 2])
+
+
+def _isobar(phases: Phases, p: float, bubble: lines.Line) -> Array:
+    """Deviations from a straight line of temperature, vapour mass and volume at the enthalpy fractions of the table."""
+    start, u = phases.solve(bubble.temperature(p), "vapour")
+    u = flash.start_at_bubble(start)
+    fractions = np.concatenate([[0.0], (1 - lines.nodes(FLASH_NODES)) / 2, [1.0]])
+    rows = []
+    for fraction in fractions:
+        point, u = flash.solve(phases, p, float(fraction), u)
+        h, _, v, q = flash.bulk(phases, point)
+        rows.append((h, point.T, q, v))
+    h, T, q, v = np.array(rows).T
+    x = (h - h[0]) / (h[-1] - h[0])
+    straight = np.array([T - (T[0] + x * (T[-1] - T[0])), q - x, (v - v[0]) / (v[-1] - v[0]) - x])
+    # values at the wanted enthalpy fractions: a polynomial through the flashes, in the molar fraction found by Newton
+    c = 2 * fractions - 1
+    to_x = chebyshev.chebfit(c, x, len(c) - 1)
+    to_table = chebyshev.chebfit(c, straight.T, len(c) - 1)
+    wanted = (lines.nodes(FRACTION_NODES) + 1) / 2
+    at = 2 * wanted - 1
+    for _ in range(30):
+        at = np.clip(at - (chebyshev.chebval(at, to_x) - wanted) / chebyshev.chebval(at, chebyshev.chebder(to_x)), -1, 1)
+    return np.asarray(chebyshev.chebval(at, to_table))
+
+
+def main(folder: Path | None = None, only: tuple[str, ...] = ()) -> None:
+    """Write one file per modelled refrigerant, with its provenance."""
+    from commission.properties.models import model_of, modelled
+
+    target = folder or Path(__file__).parent / "lines"
+    target.mkdir(exist_ok=True)
+    for name in only or modelled():
+        data = build(name, *model_of(name))
+        _write(target / lines.file_name(name), data.to_json())
+        print(f"{name}: {data.T_low - 273.15:.1f} to {data.T_high - 273.15:.1f} °C", file=sys.stderr)
+
+
+def _write(path: Path, plain: Mapping[str, Any]) -> None:
+    about = (
+        "Generated by python -m commission.properties.generate_lines from the equations of state of CoolProp, with the "
+        "phase equilibrium of commission.properties.isofugacity. SI units; h and s: 200 kJ/kg and 1 kJ/(kg K) in the "
+        "liquid at its bubble point at 0 °C (IIR reference). Do not edit."
+    )
+    path.write_text(json.dumps({"about": about, **plain}, indent=1) + "\n", encoding="utf-8")
+
+
+if __name__ == "__main__":
+    main(only=tuple(sys.argv[1:]))

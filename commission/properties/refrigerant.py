@@ -1,0 +1,420 @@
+"""A refrigerant: saturation lines, single-phase and wet states, and how sure its pressures are.
+
+Saturation comes from shipped series (`lines`), everything else from Newton iterations on the equation of state at
+(density, temperature). No flash of the property library is called, so nothing here fails in the scattered places where
+those fail on blends. Outside the ranges a `PropertyRangeError` says what the limit is.
+"""
+
+from __future__ import annotations
+
+import math
+from functools import cache, cached_property
+from typing import TYPE_CHECKING
+
+from commission.properties.errors import PropertyRangeError, bar, celsius
+from commission.properties.states import SaturationSlopes, SaturationState, Slopes, State
+
+if TYPE_CHECKING:
+    from commission.properties.equation import Equation, Point
+    from commission.properties.lines import FluidData, Line
+    from commission.properties.register import RegisterEntry
+    from commission.properties.two_phase import WetIsobar
+
+NEAR_CRITICAL = 0.97  # of the critical temperature: above, small errors of a model become large ones of its pressures
+EDGE = 1e-9  # relative; a state this close to a line counts as on it, since lines are exact to about this
+
+
+class Refrigerant:
+    """One refrigerant of the register. Make it with `refrigerant(name)`.
+
+    Temperatures in K, pressures in Pa absolute, J/kg, kg/m3. Enthalpy 200 kJ/kg and entropy 1 kJ/(kg K) in the liquid at
+    its bubble point at 0 °C (IIR reference). A Refrigerant may be used from several threads; each thread has its own
+    equation-of-state object and its own count of `calls`.
+
+    Errors: `PropertyRangeError` outside the limits. Warnings stand in the states that are returned.
+    """
+
+    def __init__(self, data: FluidData) -> None:
+        from commission.properties.equation import Equation
+
+        self._data = data
+        self._equation: Equation = Equation(data)
+        self.name = data.refrigerant
+        self.molar_mass = data.molar_mass
+        self.T_critical = data.T_critical
+        self.p_critical = data.p_critical
+        self.T_triple = data.T_triple
+        self.T_max = data.T_max
+        self.T_low = data.T_low
+        self.T_high = data.T_high
+        self.is_blend = len(data.fluids) > 1
+        self.property_source = data.property_source
+        self._dew: Line = data.dew
+        self._bubble: Line = data.bubble
+        self.p_dew_low, self.p_dew_high = (math.exp(v) for v in data.dew.ln_p_range)
+        self.p_bubble_low, self.p_bubble_high = (math.exp(v) for v in data.bubble.ln_p_range)
+
+    def __repr__(self) -> str:
+        return f"Refrigerant({self.name!r})"
+
+    @property
+    def calls(self) -> int:
+        """Calls of the equation of state made for this refrigerant by the present thread."""
+        return self._equation.calls
+
+    @cached_property
+    def register(self) -> RegisterEntry:
+        """The register's entry: composition, safety, limits, warming potential, each figure with source and mark."""
+        from commission.properties.register import register
+
+        return register()[self.name]
+
+    @cached_property
+    def pressure_relative_uncertainty(self) -> float:
+        """Relative standard uncertainty of a saturation pressure; see `uncertainty.pressure_relative_uncertainty`."""
+        from commission.properties.uncertainty import pressure_relative_uncertainty
+
+        return pressure_relative_uncertainty(self, self.register)
+
+    # Saturation
+
+    def dew(self, T: float) -> SaturationState:
+        """The dew point (saturated vapour) at `T` (K).
+
+        Raises:
+            PropertyRangeError: `T` outside `T_low`..`T_high`.
+        """
+        return self._saturation(self._dew, T)
+
+    def bubble(self, T: float) -> SaturationState:
+        """The bubble point (saturated liquid) at `T` (K).
+
+        Raises:
+            PropertyRangeError: `T` outside `T_low`..`T_high`.
+        """
+        return self._saturation(self._bubble, T)
+
+    def dew_temperature(self, p: float) -> float:
+        """Temperature (K) of the dew line at `p` (Pa absolute).
+
+        Raises:
+            PropertyRangeError: `p` outside the line.
+        """
+        self._need_pressure(p, self.p_dew_low, self.p_dew_high)
+        return self._dew.temperature(p)
+
+    def bubble_temperature(self, p: float) -> float:
+        """Temperature (K) of the bubble line at `p` (Pa absolute).
+
+        Raises:
+            PropertyRangeError: `p` outside the line.
+        """
+        self._need_pressure(p, self.p_bubble_low, self.p_bubble_high)
+        return self._bubble.temperature(p)
+
+    def dew_slopes(self, T: float) -> SaturationSlopes:
+        """Derivatives along the dew line at `T` (K). Raises PropertyRangeError outside the line."""
+        self._need_temperature(T)
+        return SaturationSlopes(*self._dew.slopes(T))
+
+    def bubble_slopes(self, T: float) -> SaturationSlopes:
+        """Derivatives along the bubble line at `T` (K). Raises PropertyRangeError outside the line."""
+        self._need_temperature(T)
+        return SaturationSlopes(*self._bubble.slopes(T))
+
+    def _saturation(self, line: Line, T: float) -> SaturationState:
+        self._need_temperature(T)
+        ln_p, h, s, ln_rho = line.row(T)
+        if T > NEAR_CRITICAL * self.T_critical:
+            return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho), (self._near_critical(T),))
+        return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho))
+
+    def _near_critical(self, T: float) -> str:
+        return (
+            f"{self.name} at {celsius(T)} is within 3 % of its critical temperature ({celsius(self.T_critical)}): "
+            "pressures and enthalpies of the property source are less sure there"
+        )
+
+    def _need_temperature(self, T: float) -> None:
+        if not self.T_low <= T <= self.T_high:
+            raise PropertyRangeError(
+                self.name,
+                f"no saturation at {celsius(T)}; it is known from {celsius(self.T_low)} to {celsius(self.T_high)} "
+                f"(critical temperature {celsius(self.T_critical)})",
+            )
+
+    def _need_pressure(self, p: float, low: float, high: float) -> None:
+        if not low <= p <= high:
+            raise PropertyRangeError(
+                self.name,
+                f"no saturation at {bar(p)}; it is known from {bar(low)} to {bar(high)} "
+                f"(critical pressure {bar(self.p_critical)})",
+            )
+
+    # Single phase
+
+    def vapour(self, T: float, p: float) -> State:
+        """Superheated vapour, or gas above the critical pressure of a pure fluid, at `T` (K) and `p` (Pa).
+
+        Raises:
+            PropertyRangeError: below the dew line, colder than `T_low`, hotter than `T_max`, or a blend above the end of
+                its dew line.
+        """
+        self._need_gas_temperature(T)
+        if p > self.p_dew_high:
+            return _state(self._above(T, p))
+        T_dew, start = self._vapour_start(T, p)
+        if T < T_dew * (1 - EDGE):
+            raise PropertyRangeError(
+                self.name, f"{celsius(T)} is below the dew point {celsius(T_dew)} at {bar(p)}: not vapour alone"
+            )
+        return _state(self._equation.density(max(T, T_dew), p, start))
+
+    def liquid(self, T: float, p: float) -> State:
+        """Subcooled liquid at `T` (K) and `p` (Pa).
+
+        Raises:
+            PropertyRangeError: pressure below the bubble point (vapour would form), or `T` outside the range.
+        """
+        if p > self.p_dew_high and not self.is_blend and self.T_high < T:
+            return _state(self._above(T, p))
+        self._need_temperature(T)
+        ln_p, _, _, ln_rho = self._bubble.row(T)
+        if not p >= math.exp(ln_p) * (1 - EDGE):
+            raise PropertyRangeError(
+                self.name, f"{bar(p)} is below the bubble point {bar(math.exp(ln_p))} at {celsius(T)}: vapour forms"
+            )
+        self._need_below_highest_pressure(p)
+        return _state(self._equation.density(T, p, math.exp(ln_rho)))
+
+    def supercritical(self, T: float, p: float) -> State:
+        """The single phase at `T` (K) and a pressure above the critical pressure (Pa); pure fluids only.
+
+        Raises:
+            PropertyRangeError: a blend, or `T` or `p` outside the range.
+        """
+        if not p >= self.p_critical:
+            raise PropertyRangeError(
+                self.name, f"{bar(p)} is not above the critical pressure {bar(self.p_critical)}"
+            )
+        return _state(self._above(T, p))
+
+    def slopes(self, state: State) -> Slopes:
+        """First derivatives of a single-phase `state` at constant pressure and at constant temperature."""
+        point = self._equation.at(state.rho, state.T)
+        alpha = point.p_T / point.p_rho  # -drho/dT at constant pressure
+        return Slopes(
+            cp=point.cp,
+            dh_dp=point.h_rho / point.p_rho,
+            ds_dT=point.cp / point.T,
+            ds_dp=point.s_rho / point.p_rho,
+            drho_dT=-alpha,
+            drho_dp=1 / point.p_rho,
+        )
+
+    def _vapour_start(self, T: float, p: float) -> tuple[float, float]:
+        """Dew temperature at `p` (0 where `p` lies below the line) and a density to start from at (T, p)."""
+        if not p > 0:
+            raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
+        ideal = p * self.molar_mass / (8.314462618 * T)
+        if p < self.p_dew_low:
+            return 0.0, ideal
+        T_dew = self._dew.temperature(p)
+        rho_dew = math.exp(self._dew.row(T_dew)[3])
+        gap = 1 - p * self.molar_mass / (8.314462618 * T_dew * rho_dew)
+        return T_dew, ideal / (1 - gap * (T_dew / max(T, T_dew)) ** 3)
+
+    def _above(self, T: float, p: float) -> Point:
+        """Beyond the end of the dew line: only a pure fluid above its critical pressure has states there."""
+        if self.is_blend or not p >= self.p_critical:
+            raise PropertyRangeError(
+                self.name, f"{bar(p)} is above {bar(self.p_dew_high)}, where the known dew line ends"
+            )
+        self._need_gas_temperature(T)
+        self._need_below_highest_pressure(p)
+        return self._equation.dense(T, p, 1.3 * math.exp(self._bubble.row(self.T_low)[3]))
+
+    def _need_gas_temperature(self, T: float) -> None:
+        if not self.T_low <= T <= self.T_max:
+            raise PropertyRangeError(
+                self.name,
+                f"{celsius(T)} is outside {celsius(self.T_low)} to {celsius(self.T_max)}, where the equation of state holds",
+            )
+
+    def _need_below_highest_pressure(self, p: float) -> None:
+        if not p <= self._data.p_max:
+            raise PropertyRangeError(self.name, f"{bar(p)} is above {bar(self._data.p_max)}, where the equation ends")
+
+    # From pressure with enthalpy or entropy
+
+    def isentropic_end(self, state: State | SaturationState, p: float) -> State:
+        """The state at `p` (Pa) with the entropy of `state`: vapour, gas above critical, or wet with a warning.
+
+        Raises:
+            PropertyRangeError: the end lies outside the range, or in the liquid.
+        """
+        if p > self.p_dew_high:
+            return self._isentropic_above(state, p)
+        return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region")
+
+    def vapour_from_enthalpy(self, p: float, h: float) -> State:
+        """Vapour, or gas above critical, at `p` (Pa) with enthalpy `h` (J/kg).
+
+        Raises:
+            PropertyRangeError: `h` below the dew line, or the state outside the range.
+        """
+        if p > self.p_dew_high:
+            return self._above_from_enthalpy(p, h)
+        return self._vapour_or_wet(p, "h", h, wet=None)
+
+    def throttled(self, p: float, h: float) -> State:
+        """The state at `p` (Pa) after an expansion that keeps enthalpy `h` (J/kg): wet, or liquid, or vapour.
+
+        Raises:
+            PropertyRangeError: outside the range.
+        """
+        if p > self.p_dew_high:
+            return self._above_from_enthalpy(p, h)
+        isobar = self._wet(p)
+        x = isobar.fraction(h)
+        if x > 1:
+            return self._vapour_or_wet(p, "h", h, wet=None)
+        if x < 0:
+            return self._liquid_from_enthalpy(isobar.bubble, h)
+        return isobar.state(x)
+
+    def mean_evaporating_temperature(self, p: float, h_in: float) -> float:
+        """Temperature (K) at which the refrigerant takes up heat at `p` (Pa), averaged over that heat from `h_in` to dew.
+
+        This is the average over enthalpy, so that heat = conductance x difference holds to first order; the mean of
+        inlet and dew temperature differs from it by up to 1 K for a blend of large glide.
+
+        Raises:
+            PropertyRangeError: `p` outside the wet range, or `h_in` not below the dew line.
+        """
+        isobar = self._wet(p)
+        x = isobar.fraction(h_in)
+        if not x < 1:
+            raise PropertyRangeError(self.name, f"enters above its dew point at {bar(p)}: nothing evaporates")
+        return isobar.mean_temperature(max(x, 0.0))
+
+    def _wet(self, p: float) -> WetIsobar:
+        from commission.properties.two_phase import WetIsobar
+
+        self._need_pressure(p, self.p_bubble_low, self.p_dew_high)
+        T_dew = self._dew.temperature(p)
+        dew = self._saturation(self._dew, T_dew)
+        bubble = self._saturation(self._bubble, self._bubble.temperature(p) if self.is_blend else T_dew)
+        return WetIsobar(bubble, dew, self._data.two_phase)
+
+    def _vapour_or_wet(self, p: float, name: str, value: float, wet: str | None) -> State:
+        """At `p` below the end of the dew line: vapour where `value` lies above the dew line, else wet if allowed."""
+        if not p >= self.p_dew_low:
+            raise PropertyRangeError(self.name, f"{bar(p)} is below {bar(self.p_dew_low)}, where the dew line begins")
+        T_dew = self._dew.temperature(p)
+        _, h, s, ln_rho = self._dew.row(T_dew)
+        at_dew = s if name == "s" else h
+        if value < at_dew:
+            if wet is None:
+                raise PropertyRangeError(
+                    self.name, f"{value / 1e3:.1f} kJ/kg is below the dew line ({h / 1e3:.1f} kJ/kg) at {bar(p)}"
+                )
+            return self._wet_at_entropy(p, value, wet)
+        rho = math.exp(ln_rho)
+        cp = self._equation.at(rho, T_dew).cp
+        T = T_dew * math.exp((value - s) / cp) if name == "s" else T_dew + (value - h) / cp
+        T = min(T, 1.2 * self.T_max)
+        return _state(self._held(self._equation.solve(p, name, value, rho * T_dew / T, T)))
+
+    def _wet_at_entropy(self, p: float, s: float, wet: str) -> State:
+        isobar = self._wet(p)
+        if s < isobar.bubble.s:
+            raise PropertyRangeError(self.name, f"entropy below the bubble line at {bar(p)}: liquid, not vapour")
+        state = isobar.state(isobar.fraction_at_entropy(s))
+        assert state.quality is not None
+        note = f"{wet} ({100 * (1 - state.quality):.1f} % liquid by mass at {bar(p)}): liquid in a compressor does harm"
+        return State(state.T, state.p, state.h, state.s, state.rho, state.quality, (note,))
+
+    def _liquid_from_enthalpy(self, bubble: SaturationState, h: float) -> State:
+        cp = self._equation.at(bubble.rho, bubble.T).cp
+        point = self._equation.solve(bubble.p, "h", h, bubble.rho, bubble.T + (h - bubble.h) / cp)
+        if not point.T >= self.T_low:
+            raise PropertyRangeError(self.name, f"liquid colder than {celsius(self.T_low)}, where the equation ends")
+        return _state(point)
+
+    def _isentropic_above(self, state: State | SaturationState, p: float) -> State:
+        """Along the isentrope in steps of pressure, each started by the slope at the last: robust past critical."""
+        self._need_supercritical(p)
+        point = self._equation.at(state.rho, state.T)
+        steps = max(1, math.ceil(math.log(p / state.p) / 0.4)) if p > state.p else 4
+        for k in range(1, steps + 1):
+            p_next = state.p * (p / state.p) ** (k / steps)
+            determinant = point.p_rho * point.s_T - point.p_T * point.s_rho
+            d_p = p_next - point.p
+            rho = point.rho * math.exp(point.s_T * d_p / determinant / point.rho * _log_share(p_next, point.p))
+            T = point.T * math.exp(-point.s_rho * d_p / determinant / point.T * _log_share(p_next, point.p))
+            point = self._equation.solve(p_next, "s", state.s, rho, T)
+        return _state(self._held(point))
+
+    def _above_from_enthalpy(self, p: float, h: float) -> State:
+        """At supercritical pressure: temperature in a bracket by the false-position rule, then Newton to the last digit."""
+        self._need_supercritical(p)
+        low, high = self.T_low, self.T_max
+        T = self.T_critical
+        for _ in range(60):
+            point = self._above(T, p)
+            miss = h - point.h
+            low, high = (T, high) if miss > 0 else (low, T)
+            step = miss / point.cp
+            if abs(step) < 1e-7 * T:
+                return _state(self._held(self._equation.solve(p, "h", h, point.rho, point.T)))
+            T = T + step if low < T + step < high else (low + high) / 2
+            if high - low < 1e-9:
+                break
+        raise PropertyRangeError(self.name, f"no state with {h / 1e3:.1f} kJ/kg at {bar(p)} inside the range")
+
+    def _need_supercritical(self, p: float) -> None:
+        if self.is_blend or not p >= self.p_critical:
+            raise PropertyRangeError(
+                self.name, f"{bar(p)} is above {bar(self.p_dew_high)}, where the known dew line ends"
+            )
+        self._need_below_highest_pressure(p)
+
+    def _held(self, point: Point) -> Point:
+        """The point, if its temperature is inside the range of the equation."""
+        self._need_gas_temperature(point.T)
+        return point
+
+
+def _log_share(p_next: float, p: float) -> float:
+    """Turns a straight step in pressure into one in its logarithm, which an isentrope follows more closely."""
+    return math.log(p_next / p) * p / (p_next - p)
+
+
+def _state(point: Point) -> State:
+    return State(point.T, point.p, point.h, point.s, point.rho)
+
+
+@cache
+def refrigerant(name: str) -> Refrigerant:
+    """The refrigerant of that name: `R-454B`, `R454B`, `r 454b`, `propane`, `ammonia`, `CO2`. One object per name.
+
+    Raises:
+        InputError: unknown name; the problem carries the nearest known one.
+        NotCalculatedError: in the register, but without an equation of state.
+    """
+    from commission.properties.models import designation
+
+    known = designation(name)
+    return refrigerant(known) if known != name else _make(known)
+
+
+def _make(known: str) -> Refrigerant:
+    from commission.properties import lines
+    from commission.properties.generate_lines import build
+    from commission.properties.models import model_of
+
+    data = lines.read(known)
+    if data is None:
+        data = build(known, *model_of(known))
+    return Refrigerant(data)

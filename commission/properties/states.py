@@ -1,0 +1,60 @@
+"""What the property room hands out: states as frozen data, SI throughout, enthalpy and entropy on the IIR reference."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True, slots=True)
+class SaturationState:
+    """A point of the dew or bubble line: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3)."""
+
+    T: float
+    p: float
+    h: float
+    s: float
+    rho: float
+    warnings: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class State:
+    """A state of the refrigerant: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3).
+
+    `quality` is the mass fraction of vapour of a two-phase state and None in a single phase. `warnings` are sentences for
+    the person who reads the result.
+    """
+
+    T: float
+    p: float
+    h: float
+    s: float
+    rho: float
+    quality: float | None = None
+    warnings: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Slopes:
+    """Derivatives of a single-phase state by temperature at constant pressure, and by pressure at constant temperature.
+
+    `cp` = dh/dT (J/(kg K)), `dh_dp` (J/(kg Pa)), `ds_dT` (J/(kg K2)), `ds_dp` (J/(kg K Pa)), `drho_dT` (kg/(m3 K)),
+    `drho_dp` (kg/(m3 Pa)).
+    """
+
+    cp: float
+    dh_dp: float
+    ds_dT: float
+    ds_dp: float
+    drho_dT: float
+    drho_dp: float
+
+
+@dataclass(frozen=True, slots=True)
+class SaturationSlopes:
+    """Derivatives along a saturation line by temperature: of ln p (1/K), h (J/(kg K)), s (J/(kg K2)), ln rho (1/K)."""
+
+    dlnp_dT: float
+    dh_dT: float
+    ds_dT: float
+    dlnrho_dT: float
