@@ -24,6 +24,7 @@ from commission.properties.isofugacity import Array, Equilibrium, Phases
 TERMS = 33
 PRESSURE_NODES, FRACTION_NODES, FLASH_NODES = 14, 10, 12
 ATMOSPHERE = 101325.0
+EASY_REDUCED = 0.7
 LOWEST_REDUCED = 0.5  # of the critical temperature: below any refrigerating duty of the fluid
 PURE_TOP, BLEND_MARGIN = 0.9995, 2.0  # share of Tc, and K below Tc: nearer, the two phases merge in the last digits
 IIR_TEMPERATURE, IIR_ENTHALPY, IIR_ENTROPY = 273.15, 200e3, 1000.0
@@ -50,6 +51,7 @@ def build(
     T_low = max(T_triple, LOWEST_REDUCED * Tc)
     T_high = PURE_TOP * Tc if len(fluids) == 1 else Tc - BLEND_MARGIN
     dew, bubble = (_line(phases, incipient, Tc, T_low, T_high) for incipient in ("liquid", "vapour"))
+    _check(refrigerant, dew, bubble)
     datum = bubble.row(IIR_TEMPERATURE)
     offsets = (IIR_ENTHALPY - datum[1], IIR_ENTROPY - datum[2])
     for line in (dew, bubble):
@@ -93,15 +95,36 @@ def _line(phases: Phases, incipient: str, Tc: float, T_low: float, T_high: float
     return lines.Line(Tc, T_low, T_high, lines.series_at_nodes(values))
 
 
+def _check(refrigerant: str, dew: lines.Line, bubble: lines.Line) -> None:
+    """Refuse lines that break a law: dew above bubble pressure, pressure falling with temperature, no latent heat.
+
+    Raises:
+        NotCalculatedError: a false solution of the equal-fugacity equations was found.
+    """
+    T = np.linspace(dew.T_low, dew.T_high, 200)
+    d, b = dew.rows(T), bubble.rows(T)
+    wrong = (d[0] > b[0] + 1e-7) | (d[1] <= b[1]) | (d[2] <= b[2]) | (d[3] >= b[3])
+    if wrong.any() or (np.diff(d[0]) <= 0).any() or (np.diff(b[0]) <= 0).any():
+        raise NotCalculatedError(f"{refrigerant}: the saturation lines found break a law near {T[wrong][:1]} K")
+
+
 def _trace(phases: Phases, incipient: str, temperatures: Array) -> list[Equilibrium]:
-    """Equilibria at rising `temperatures`, each started from the two before, with extra steps where they are needed."""
-    found: list[Equilibrium] = []
-    history: list[tuple[float, Array]] = []
-    for T in temperatures:
-        point, u = _reach(phases, incipient, float(T), history)
-        history.append((float(T), u))
-        found.append(point)
-    return found
+    """Equilibria at the `temperatures`, each started from the two before, outwards from a middle one.
+
+    Near 0.7 of critical the first guess is good and has one solution; cold, it can lead to a second liquid.
+    """
+    order = np.argsort(np.abs(temperatures - EASY_REDUCED * temperatures.max()))
+    first = int(order[0])
+    found: dict[int, Equilibrium] = {}
+    begin: list[tuple[float, Array]] = []
+    for run in (range(first, len(temperatures)), range(first - 1, -1, -1)):
+        history = list(begin)
+        for k in run:
+            T = float(temperatures[k])
+            found[k], u = _reach(phases, incipient, T, history)
+            history.append((T, u))
+            begin = begin or [(T, u)]
+    return [found[k] for k in range(len(temperatures))]
 
 
 def _reach(
@@ -176,7 +199,8 @@ def _write(path: Path, plain: Mapping[str, Any]) -> None:
         "phase equilibrium of commission.properties.isofugacity. SI units; h and s: 200 kJ/kg and 1 kJ/(kg K) in the "
         "liquid at its bubble point at 0 °C (IIR reference). Do not edit."
     )
-    path.write_text(json.dumps({"about": about, **plain}, indent=1) + "\n", encoding="utf-8")
+    rows = (f"{json.dumps(key)}: {json.dumps(value)}" for key, value in {"about": about, **plain}.items())
+    path.write_text("{\n" + ",\n".join(rows) + "\n}\n", encoding="utf-8")
 
 
 if __name__ == "__main__":

@@ -136,7 +136,7 @@ class Refrigerant:
         )
 
     def _need_temperature(self, T: float) -> None:
-        if not self.T_low <= T <= self.T_high:
+        if not self.T_low * (1 - EDGE) <= T <= self.T_high * (1 + EDGE):
             raise PropertyRangeError(
                 self.name,
                 f"no saturation at {celsius(T)}; it is known from {celsius(self.T_low)} to {celsius(self.T_high)} "
@@ -144,7 +144,7 @@ class Refrigerant:
             )
 
     def _need_pressure(self, p: float, low: float, high: float) -> None:
-        if not low <= p <= high:
+        if not low * (1 - EDGE) <= p <= high * (1 + EDGE):
             raise PropertyRangeError(
                 self.name,
                 f"no saturation at {bar(p)}; it is known from {bar(low)} to {bar(high)} "
