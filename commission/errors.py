@@ -5,6 +5,7 @@ from __future__ import annotations
 import difflib
 from collections.abc import Iterable
 from dataclasses import dataclass
+from itertools import islice
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,12 +33,12 @@ class Problem:
         return ":".join(p for p in parts if p)
 
     def __str__(self) -> str:
-        head = ": ".join(p for p in (self.place, self.path) if p)
+        head = ": ".join(p for p in (self.place, shorten(self.path)) if p)
         text = f"{head}: {self.message}" if head else self.message
         if self.value is not None:
             text += f"\n    written: {shorten(self.value)}"
         if self.allowed is not None:
-            text += f"\n    allowed: {self.allowed}"
+            text += f"\n    allowed: {shorten(self.allowed, 600)}"
         if self.nearest is not None:
             text += f"\n    did you mean: {self.nearest}"
         return text
@@ -68,6 +69,23 @@ def shorten(text: str, limit: int = 120) -> str:
 
 
 def nearest(word: str, known: Iterable[str], cutoff: float = 0.6) -> str | None:
-    """The known word most like `word`, or None where none is alike."""
-    found = difflib.get_close_matches(word[:80], list(known), n=1, cutoff=cutoff)
-    return found[0] if found else None
+    """The known word most like `word`, or None where none is alike; capitals and spaces count least.
+
+    Only the first 80 characters of `word` and the first 2,000 known words are looked at, so that a hostile file
+    cannot make this slow.
+    """
+    words = list(islice(known, 2000))
+    start = word[:80]
+    plain = {_plain(one): one for one in reversed(words)}
+    if _plain(start) in plain:
+        return plain[_plain(start)]
+    found = difflib.get_close_matches(start, words, n=1, cutoff=cutoff)
+    if found:
+        return found[0]
+    found = difflib.get_close_matches(_plain(start), plain, n=1, cutoff=cutoff)
+    return plain[found[0]] if found else None
+
+
+def _plain(word: str) -> str:
+    """A word without capitals, spaces, hyphens and underscores."""
+    return "".join(c for c in word.casefold() if c not in " -_\t")

@@ -61,11 +61,17 @@ def check(
     try:
         return model_cls.model_validate(data), []
     except ValidationError as failure:
-        details = failure.errors(include_url=False)
+        details = _without_echoes(failure.errors(include_url=False))
         problems = [_problem(model_cls, e, positions, at) for e in islice(details, MAX_PROBLEMS)]
         if len(details) > MAX_PROBLEMS:
             problems.append(positions.problem(at, f"and {len(details) - MAX_PROBLEMS} more problems"))
         return None, problems
+
+
+def _without_echoes(details: list[ErrorDetails]) -> list[ErrorDetails]:
+    """A list whose entries are all at fault is also called too short; that alone would mislead."""
+    faulty = {e["loc"][:length] for e in details for length in range(len(e["loc"]))}
+    return [e for e in details if not (e["type"] == "too_short" and e["loc"] in faulty)]
 
 
 def bounded(problems: Sequence[Problem]) -> list[Problem]:
@@ -108,8 +114,8 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
             return positions.problem(
                 path, str(context["message"]), allowed=context.get("allowed"), nearest=context.get("nearest")
             )
-        case "too_short":
-            return positions.problem(path, "at least one entry is wanted here")
+        case "too_short" | "too_long":
+            return positions.problem(path, _wrong_length(context))
         case kind:
             message = _WANTED.get(kind) or shorten(error["msg"])
             if positions.text(path) == "":
@@ -118,12 +124,22 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
             return positions.problem(path, message, allowed=allowed or None)
 
 
+def _wrong_length(context: Mapping[str, Any]) -> str:
+    least, most, actual = (context.get(key) for key in ("min_length", "max_length", "actual_length"))
+    if most is not None or (least or 1) > 1:
+        wanted = f"at least {least}" if most is None else f"exactly {most}"
+        return f"{wanted} entries are wanted here; there are {actual}"
+    return "at least one entry is wanted here"
+
+
 def _missing(model_cls: type[BaseModel], inside: KeyPath, positions: Positions, path: KeyPath) -> Problem:
     field = _field_at(model_cls, inside)
     meaning = f" ({field.description})" if field and field.description else ""
     choices = choices_of(field.annotation) if field else ()
     parent = path[:-1]
-    where = f"in {parent[-1]!s}" if parent else "in this file"
+    where = "in this file"
+    if parent:
+        where = f"in entry {parent[-1] + 1} of {parent[-2]}" if isinstance(parent[-1], int) else f"in {parent[-1]}"
     problem = positions.problem(
         parent, f"the key {path[-1]!r}{meaning} is missing {where}", allowed=_listed(choices) or None, at_key=True
     )

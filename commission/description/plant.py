@@ -7,17 +7,20 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
+from typing import TYPE_CHECKING
 
+from commission.description.assembling import PLANT_FILE, assemble
 from commission.description.assumptions import Assumption, assumptions_for
 from commission.description.checking import bounded, validate
-from commission.description.meaning import Looked, problems_of_meaning
+from commission.description.looked import Looked
+from commission.description.meaning import problems_of_meaning
 from commission.description.model import Plant, System
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
-from commission.description.reading import read_yaml
 from commission.errors import InputError, Problem, nearest
 from commission.quantities import Pressure
 
-PLANT_FILE = "plant.yaml"
+if TYPE_CHECKING:
+    from commission.properties.register import RegisterEntry
 
 
 @dataclass(frozen=True)
@@ -66,6 +69,14 @@ class LoadedPlant:
             path = path.rpartition(".")[0]
         return self._by_text.get(path, self.positions.mark(()).value)
 
+    @cached_property
+    def register(self) -> Mapping[str, RegisterEntry]:
+        """The refrigerant register by designation, with the plant's own figures in place of the book's."""
+        from commission.properties.register import register
+
+        own = self.plant.refrigerants
+        return register({n: {k: f.model_dump(exclude_none=True) for k, f in of.items()} for n, of in own.items()})
+
     def assumptions(self, identity: str) -> Mapping[str, Assumption]:
         """The assumption list of one system, own values with their place in the description."""
         return assumptions_for(self.system(identity), self.positions, ("systems", identity))
@@ -86,18 +97,21 @@ def load_plant(folder: Path | str) -> LoadedPlant:
         raise DescriptionError(
             Problem("there is no such folder", file=str(folder), allowed=f"a folder that holds {PLANT_FILE}")
         )
-    read = read_yaml(folder / PLANT_FILE, PLANT_FILE)
-    plant = validate(Plant, read.data, read.positions, also=read.problems)
+    whole = assemble(folder)
+    plant = validate(Plant, whole.data, whole.positions, also=whole.problems)
     barometric_pressure = site_pressure(plant)
-    found = problems_of_meaning(Looked(plant, read.positions, barometric_pressure))
+    found = problems_of_meaning(Looked(plant, whole.positions, barometric_pressure))
     if found:
         raise DescriptionError(*bounded(found))
-    contents = {PLANT_FILE: read.content}
-    return LoadedPlant(plant, folder, digest_of(contents), tuple(contents), read.positions, barometric_pressure)
+    digest = digest_of(whole.contents)
+    return LoadedPlant(plant, folder, digest, tuple(whole.contents), whole.positions, barometric_pressure)
 
 
 def site_pressure(plant: Plant) -> float:
-    """Barometric pressure of the site in Pa, from its altitude."""
+    """Barometric pressure of the site in Pa: as stated, or from its altitude."""
+    stated = plant.plant.barometric_pressure
+    if stated is not None:
+        return stated.pascal
     return float(101325.0 * (1 - 2.25577e-5 * plant.plant.altitude) ** 5.25588)
 
 

@@ -29,7 +29,14 @@ from commission.description.model.promises import (
     Tolerance,
 )
 from commission.description.model.site import Climate, NoiseLimits, Person, Rules, Site, Space
-from commission.description.model.system import AssumptionOverride, Nameplate, Plant, System, SystemSpaces
+from commission.description.model.system import (
+    AssumptionOverride,
+    FigureOverride,
+    Nameplate,
+    Plant,
+    System,
+    SystemSpaces,
+)
 
 __all__ = [
     "Accuracy",
@@ -54,6 +61,7 @@ __all__ = [
     "EnvelopeCorner",
     "Evaporator",
     "Expansion",
+    "FigureOverride",
     "GasCoolerPressure",
     "Guarantee",
     "HeadPressure",

@@ -57,6 +57,14 @@ class AssumptionOverride(Part):
     source: str = Field(description="where the value comes from")
 
 
+class FigureOverride(Part):
+    """A figure that replaces the register's for one refrigerant."""
+
+    value: str = Field(description="value as the register writes it, with its unit")
+    source: str = Field(description="document and edition it is read from")
+    note: str | None = Field(None, description="what to know about it")
+
+
 class System(Part):
     """One refrigerating system."""
 
@@ -106,3 +114,6 @@ class Plant(Part):
     instruments: dict[str, Instrument] = Field(default_factory=dict, description="gauges, probes and meters")
     systems: dict[str, System] = Field(min_length=1, description="the refrigerating systems by id")
     documents: tuple[Document, ...] = Field((), description="documents of the plant as a whole")
+    refrigerants: dict[str, dict[str, FigureOverride]] = Field(
+        default_factory=dict, description="figures that replace those of the refrigerant register, by designation"
+    )

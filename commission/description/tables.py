@@ -1,0 +1,105 @@
+"""Read a CSV file as a spreadsheet saves it, each cell with its place."""
+
+from __future__ import annotations
+
+import csv
+import io
+from dataclasses import dataclass
+from pathlib import Path
+
+from commission.description.positions import DescriptionError, Position
+from commission.description.reading import decode, read_bytes
+from commission.errors import Problem
+
+MAX_ROWS = 2000
+MAX_COLUMNS = 200
+_DELIMITERS = (";", "\t", ",")
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """The text of one cell without the spaces around it, and where it stands."""
+
+    text: str
+    place: Position
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """A heading row and the rows below it that hold anything; cells beyond the headings are refused by the reader."""
+
+    heading: tuple[Cell, ...]
+    rows: tuple[tuple[Cell, ...], ...]
+    content: bytes
+
+
+def read_table(path: Path, file: str) -> Table:
+    """Read a CSV with a heading row: UTF-8 (or UTF-16 with its mark), separated by semicolon, tabulator or comma.
+
+    Raises:
+        DescriptionError: not readable, no heading, rows longer than the heading, or too large.
+    """
+    content = read_bytes(path, file)
+    text = _text(content, file)
+    lines = text.splitlines()
+    if not lines or not text.strip():
+        raise DescriptionError(Problem("the file is empty", file, 1, 1))
+    delimiter = _delimiter(next(line for line in lines if line.strip()))
+    reader = csv.reader(io.StringIO(text, newline=""), delimiter=delimiter, strict=True)
+    found: list[tuple[Cell, ...]] = []
+    problems: list[Problem] = []
+    line = 1
+    try:
+        for row in reader:
+            cells = _cells(row, lines, line, delimiter, file)
+            line = reader.line_num + 1
+            while cells and not cells[-1].text:
+                cells = cells[:-1]
+            if not cells:
+                continue
+            if len(found) > MAX_ROWS or len(cells) > MAX_COLUMNS:
+                limit = f"{MAX_ROWS} rows and {MAX_COLUMNS} columns"
+                raise DescriptionError(Problem("the table is too large", file, line, 1, allowed=limit))
+            if found and len(cells) > len(found[0]):
+                extra = cells[len(found[0])]
+                message = "there is no heading above this cell"
+                problems.append(Problem(message, file, extra.place.line, extra.place.column, value=extra.text))
+            found.append(cells)
+    except csv.Error as error:
+        raise DescriptionError(*problems, Problem(f"this is not CSV: {error}", file, line, 1)) from None
+    if problems:
+        raise DescriptionError(*problems)
+    return Table(found[0], tuple(found[1:]), content)
+
+
+def _text(content: bytes, file: str) -> str:
+    if content.startswith((b"\xff\xfe", b"\xfe\xff")):
+        try:
+            content = content.decode("utf-16").encode()
+        except (UnicodeDecodeError, UnicodeEncodeError):
+            raise DescriptionError(Problem("this is not text in UTF-16, as its first bytes say", file, 1, 1)) from None
+    return decode(content, file)
+
+
+def _delimiter(heading: str) -> str:
+    """The separator that the heading row uses most; text in quotes does not count."""
+    outside = "".join(heading.split('"')[::2])
+    return max(_DELIMITERS, key=outside.count)
+
+
+def _cells(row: list[str], lines: list[str], line: int, delimiter: str, file: str) -> tuple[Cell, ...]:
+    """The cells of a row; the column is that of the character where the cell starts, where its line shows it."""
+    starts = _starts(lines[line - 1], delimiter) if line <= len(lines) else []
+    return tuple(
+        Cell(text.strip(), Position(file, line, starts[n] if n < len(starts) else 1)) for n, text in enumerate(row)
+    )
+
+
+def _starts(line: str, delimiter: str) -> list[int]:
+    starts, quoted = [1], False
+    for number, character in enumerate(line, start=1):
+        if character == '"':
+            quoted = not quoted
+        elif character == delimiter and not quoted:
+            starts.append(number + 1)
+    return starts
