@@ -1,0 +1,80 @@
+"""Exchangers by effectiveness and number of transfer units: conductance given, heat bounded. SI units.
+
+Kays & London, Compact Heat Exchangers, 3rd ed. 1984; Incropera & DeWitt, Fundamentals of Heat and Mass Transfer,
+6th ed., ch. 11. One side evaporates or condenses, so that the ratio of capacity rates is zero and the flow
+arrangement does not matter.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Literal
+
+from commission.errors import NotCalculatedError
+
+Flow = Literal["counterflow", "parallel", "crossflow unmixed"]
+
+
+def effectiveness(transfer_units: float, capacity_ratio: float = 0.0, flow: Flow = "counterflow") -> float:
+    """Effectiveness (0-1) of an exchanger with `transfer_units` = UA/C_min and `capacity_ratio` = C_min/C_max.
+
+    Incropera & DeWitt 6th ed. eq. 11.28a (parallel), 11.29a (counterflow), 11.32 (cross-flow, both unmixed, an
+    approximation), 11.35a (capacity ratio zero).
+
+    Raises:
+        ValueError: a negative number of transfer units, or a capacity ratio outside 0-1.
+    """
+    if transfer_units < 0 or not 0 <= capacity_ratio <= 1:
+        raise ValueError(f"no exchanger has NTU {transfer_units} and capacity ratio {capacity_ratio}")
+    if capacity_ratio < 1e-12:
+        return -math.expm1(-transfer_units)
+    if flow == "parallel":
+        return -math.expm1(-transfer_units * (1 + capacity_ratio)) / (1 + capacity_ratio)
+    if flow == "crossflow unmixed":
+        inner = math.expm1(-capacity_ratio * transfer_units**0.78)
+        return -math.expm1(transfer_units**0.22 / capacity_ratio * inner)
+    if capacity_ratio > 1 - 1e-9:
+        return transfer_units / (1 + transfer_units)
+    power = math.exp(-transfer_units * (1 - capacity_ratio))
+    return (1 - power) / (1 - capacity_ratio * power)
+
+
+def conductance_for(heat: float, temperature_difference: float, capacity_rate: float) -> float:
+    """Conductance in W/K that transfers `heat` (W) at inlet difference (K) to a medium of `capacity_rate` (W/K).
+
+    Inverse of `Exchanger.heat` at full flow.
+
+    Raises:
+        NotCalculatedError: more heat than the medium can take up at that difference, whatever the conductance.
+    """
+    greatest = capacity_rate * temperature_difference
+    if not 0 < heat < greatest:
+        raise NotCalculatedError(
+            f"{heat / 1e3:.2f} kW cannot be transferred at {temperature_difference:.1f} K inlet difference: "
+            f"the flow of the medium would carry {greatest / 1e3:.2f} kW at most"
+        )
+    return -capacity_rate * math.log1p(-heat / greatest)
+
+
+@dataclass(frozen=True, slots=True)
+class Exchanger:
+    """An evaporator or condenser.
+
+    `conductance` in W/K holds at `rated_flow` (m3/s) of the medium; elsewhere it follows flow to the power
+    `flow_exponent`, which is the share of the medium's side in the whole resistance times its own exponent.
+    """
+
+    conductance: float
+    rated_flow: float
+    flow_exponent: float = 0.0
+
+    def conductance_at(self, volume_flow: float) -> float:
+        """Conductance in W/K at another flow of the medium in m3/s."""
+        if self.flow_exponent == 0.0 or volume_flow == self.rated_flow:
+            return self.conductance
+        return self.conductance * float((volume_flow / self.rated_flow) ** self.flow_exponent)
+
+    def heat_per_kelvin(self, volume_flow: float, capacity_rate: float) -> float:
+        """Heat in W for each kelvin between medium inlet and refrigerant, at this flow and capacity rate."""
+        return capacity_rate * effectiveness(self.conductance_at(volume_flow) / capacity_rate)

@@ -1,0 +1,265 @@
+"""Single stage: one compressor, one evaporator, one condenser, receiver, valve with held superheat.
+
+Unknowns: evaporating and condensing temperature (dew). Residuals: heat taken up by the refrigerant against heat given
+by the source exchanger, heat given up against heat taken by the sink exchanger (component balance: Stoecker & Jones,
+Refrigeration and Air Conditioning, 2nd ed. 1982, ch. 14). Where head pressure is held the condensing temperature is
+known and the manipulated share of the condenser is the unknown instead.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+from commission.errors import NotCalculatedError
+from commission.machine.compressor import Compression, Compressor
+from commission.machine.exchanger import Exchanger
+from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
+from commission.machine.operating_point import Media, OperatingPoint, StatePoint
+from commission.machine.solver import Solution, solve
+from commission.properties import Refrigerant, State
+
+FREE = "free condensing"
+HELD = "head pressure held"
+LOWEST = "head pressure below its setting, control at its lowest"
+
+
+@dataclass(frozen=True, slots=True)
+class SuctionLine:
+    """Between evaporator outlet and compressor: pressure loss in kelvin of dew temperature, and heat from around.
+
+    The gas is warmed by `heating_share` of the difference between the surroundings and the evaporator outlet;
+    `warming` is a further rise in K that does not depend on them. The heat is taken after the evaporator, so
+    it is no use to the source, and it raises the suction temperature that is read.
+    """
+
+    pressure_loss: float = 0.0
+    heating_share: float = 0.0
+    warming: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class SingleStage:
+    """All parameters of the machine; temperatures differences in K. Faults are other values of these parameters."""
+
+    refrigerant: Refrigerant
+    compressor: Compressor
+    evaporator: Exchanger
+    condenser: Exchanger
+    superheat: float
+    subcooling: float
+    suction_line: SuctionLine = SuctionLine()
+    discharge_line_loss: float = 0.0
+    head_pressure: HeadPressure | None = None
+
+    def operate(self, media: Media, start: OperatingPoint | None = None) -> OperatingPoint:
+        """The operating point at this condition; `start` is a neighbouring point that saves work.
+
+        Raises:
+            NotCalculatedError: no balance within the range of the property data; the message says why.
+        """
+        circuit = _Circuit(self, media)
+        control = self.head_pressure
+        if control is None:
+            return circuit.free(1.0, FREE, start)
+        if start is not None and start.regime == HELD:
+            held = circuit.held(control, start)
+            if held is not None:
+                return held
+        point = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
+        if point.condensing_temperature >= control.hold:
+            return point
+        held = circuit.held(control, None)
+        if held is None:
+            raise NotCalculatedError(
+                "no balance with the head pressure held, though the free condensing temperature is below the setting"
+            )
+        return held
+
+    def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
+        """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
+        return _Circuit(self, media).cycle(evaporating, condensing)
+
+    def condensing_unit(
+        self,
+        evaporating_temperature: float,
+        superheat: float,
+        subcooling: float,
+        media: Media,
+        start: OperatingPoint | None = None,
+    ) -> OperatingPoint:
+        """The condensing side alone at a given dew point (K) and superheat (K) at its suction, as it is catalogued.
+
+        `heat_from_source` then counts all the superheat to the suction port, as EN 13215 and EN 12900 do.
+
+        Raises:
+            NotCalculatedError: no balance within the range of the property data.
+        """
+        unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine())
+        return _Circuit(unit, media).condensing_side(evaporating_temperature, start)
+
+
+class _Circuit:
+    """Refrigerant side of one machine at one condition; keeps the states that depend on one unknown alone."""
+
+    def __init__(self, machine: SingleStage, media: Media) -> None:
+        self.machine = machine
+        self.media = media
+        self._low: dict[float, tuple[State, State]] = {}
+        self._high: dict[float, tuple[float, State]] = {}
+
+    def low_side(self, evaporating: float) -> tuple[State, State]:
+        """States at the evaporator outlet and at the suction port."""
+        if evaporating not in self._low:
+            m, fluid = self.machine, self.machine.refrigerant
+            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew(evaporating).p)
+            line = m.suction_line
+            suction = outlet
+            if line.pressure_loss or line.heating_share or line.warming:
+                warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
+                suction = fluid.vapour(outlet.T + warmer, fluid.dew(evaporating - line.pressure_loss).p)
+            self._low[evaporating] = (outlet, suction)
+        return self._low[evaporating]
+
+    def high_side(self, condensing: float) -> tuple[float, State]:
+        """Pressure at the discharge port and state of the liquid before the valve."""
+        if condensing not in self._high:
+            m, fluid = self.machine, self.machine.refrigerant
+            pressure = fluid.dew(condensing).p
+            liquid = fluid.liquid(fluid.bubble_temperature(pressure) - m.subcooling, pressure)
+            discharge = fluid.dew(condensing + m.discharge_line_loss).p if m.discharge_line_loss else pressure
+            self._high[condensing] = (discharge, liquid)
+        return self._high[condensing]
+
+    def cycle(self, evaporating: float, condensing: float) -> tuple[Compression, float, float]:
+        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
+        outlet, suction = self.low_side(evaporating)
+        discharge, liquid = self.high_side(condensing)
+        compression = self.machine.compressor.compress(self.machine.refrigerant, suction, discharge)
+        source = compression.flow * (outlet.h - liquid.h)
+        sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
+        return compression, source, sink
+
+    def source_drive(self, evaporating: float, condensing: float) -> float:
+        """Temperature that drives the evaporator: for blends the mean of its inlet and its dew end."""
+        fluid = self.machine.refrigerant
+        if not fluid.is_blend:
+            return evaporating
+        return fluid.mean_evaporating_temperature(fluid.dew(evaporating).p, self.high_side(condensing)[1].h)
+
+    def sink_drive(self, condensing: float) -> float:
+        """Temperature that drives the condenser: for blends the mean of dew and bubble point."""
+        fluid = self.machine.refrigerant
+        if not fluid.is_blend:
+            return condensing
+        return 0.5 * (condensing + fluid.bubble_temperature(fluid.dew(condensing).p))
+
+    def _source_gap(self, evaporating: float, condensing: float, taken: float) -> float:
+        source, exchanger = self.media.source, self.machine.evaporator
+        per_kelvin = exchanger.heat_per_kelvin(source.volume_flow, source.capacity_rate)
+        given = per_kelvin * (source.inlet_temperature - self.source_drive(evaporating, condensing))
+        return (given - taken) / (per_kelvin * 10.0)
+
+    def _sink_gap(self, condensing: float, given: float, share: float) -> float:
+        m, sink = self.machine, self.media.sink
+        by = m.head_pressure.by if m.head_pressure else None
+        per_kelvin = heat_per_kelvin(by, share, m.condenser, sink)
+        taken = per_kelvin * (self.sink_drive(condensing) - sink.inlet_temperature)
+        return (taken - given) / (per_kelvin * 10.0)
+
+    def free(self, share: float, regime: str, start: OperatingPoint | None) -> OperatingPoint:
+        """Both temperatures follow the exchangers."""
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            _, taken, given = self.cycle(x[0], x[1])
+            return self._source_gap(x[0], x[1], taken), self._sink_gap(x[1], given, share)
+
+        near = start is not None and len(start.unknowns) == 2
+        guess = start.unknowns if near and start is not None else self._guess()
+        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
+        return self._point(solution.x[0], solution.x[1], share, regime, solution)
+
+    def held(self, control: HeadPressure, start: OperatingPoint | None) -> OperatingPoint | None:
+        """Condensing temperature held; None where the condenser would need more than its full share."""
+        condensing = control.hold
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            return (self._source_gap(x[0], condensing, self.cycle(x[0], condensing)[1]),)
+
+        near = start is not None and len(start.unknowns) == 1
+        guess = start.unknowns if near and start is not None else self._guess()[:1]
+        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
+        given = self.cycle(solution.x[0], condensing)[2]
+        difference = self.sink_drive(condensing) - self.media.sink.inlet_temperature
+        if difference <= 0:
+            return None
+        share = share_for(control.by, given / difference, self.machine.condenser, self.media.sink, control.least_share)
+        if share is None:
+            return None
+        if share == control.least_share:
+            return self.free(share, LOWEST, None)
+        return self._point(solution.x[0], condensing, share, HELD, solution)
+
+    def condensing_side(self, evaporating: float, start: OperatingPoint | None) -> OperatingPoint:
+        """Only the condenser balances; the evaporating temperature is given."""
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            return (self._sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
+
+        near = start is not None and len(start.unknowns) == 1
+        guess = start.unknowns if near and start is not None else self._guess()[1:]
+        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
+        return self._point(evaporating, solution.x[0], 1.0, FREE, solution)
+
+    def _guess(self) -> tuple[float, float]:
+        source, sink = self.media.source.inlet_temperature, self.media.sink.inlet_temperature
+        evaporating = source - 8.0
+        highest = 0.94 * self.machine.refrigerant.T_critical
+        return evaporating, min(max(sink + 10.0, evaporating + 15.0), highest)
+
+    def _point(
+        self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution
+    ) -> OperatingPoint:
+        m, fluid = self.machine, self.machine.refrigerant
+        outlet, suction = self.low_side(evaporating)
+        pressure, liquid = self.high_side(condensing)
+        compression, source, sink = self.cycle(evaporating, condensing)
+        discharge = fluid.vapour_from_enthalpy(pressure, compression.discharge_enthalpy)
+        throttled = fluid.throttled(outlet.p, liquid.h)
+        dew, bubble = fluid.dew(condensing), fluid.bubble(fluid.bubble_temperature(fluid.dew(condensing).p))
+        states = (
+            StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),
+            StatePoint("2", "compressor suction", suction.p, suction.h, suction.T, suction.s),
+            StatePoint("3", "compressor discharge", discharge.p, discharge.h, discharge.T, discharge.s),
+            StatePoint("4", "condenser, dew point", dew.p, dew.h, dew.T, dew.s),
+            StatePoint("5", "condenser, bubble point", bubble.p, bubble.h, bubble.T, bubble.s),
+            StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
+            StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
+        )
+        control = m.head_pressure
+        return OperatingPoint(
+            regime=regime,
+            evaporating_temperature=evaporating,
+            condensing_temperature=condensing,
+            suction_pressure=suction.p,
+            discharge_pressure=pressure,
+            suction_temperature=suction.T,
+            discharge_temperature=discharge.T,
+            liquid_temperature=liquid.T,
+            superheat=m.superheat,
+            compressor_superheat=suction.T - fluid.dew_temperature(suction.p),
+            subcooling=m.subcooling,
+            valve_outlet_temperature=throttled.T,
+            compression=compression,
+            heat_from_source=source,
+            heat_to_sink=sink,
+            line_gain=compression.flow * (suction.h - outlet.h),
+            share=share,
+            sink_fan_share=fan_share(control, share),
+            sink_flow_share=flow_share(control, share),
+            states=states,
+            warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
+            evaluations=solution.evaluations,
+            unknowns=solution.x,
+            jacobian=solution.jacobian,
+        )

@@ -1,0 +1,151 @@
+"""Small systems of equations: Newton start by finite differences, then Broyden. Plain floats, since n is 1 to 4.
+
+C. G. Broyden, Mathematics of Computation 19 (1965) 577-593 ("good" update). Steps are limited and halved where a
+residual cannot be evaluated or grows, so that the solver never leaves the range in which properties hold.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+
+from commission.errors import NotCalculatedError
+
+Residuals = Callable[[Sequence[float]], Sequence[float]]
+
+
+class NoSolutionError(NotCalculatedError):
+    """The balance was not reached; the message says how far it got."""
+
+
+@dataclass(frozen=True, slots=True)
+class Solution:
+    """Unknowns at the solution, residuals there, number of residual evaluations, and the Jacobian for a warm start."""
+
+    x: tuple[float, ...]
+    residuals: tuple[float, ...]
+    evaluations: int
+    jacobian: tuple[tuple[float, ...], ...]
+
+
+def solve(
+    residuals: Residuals,
+    start: Sequence[float],
+    *,
+    difference: float = 0.02,
+    largest_step: float = 8.0,
+    tolerance: float = 1e-9,
+    evaluations: int = 120,
+    jacobian: Sequence[Sequence[float]] | None = None,
+) -> Solution:
+    """Unknowns at which all residuals are below `tolerance`.
+
+    `residuals` returns as many numbers of order one as there are unknowns; `difference` is the step of the finite
+    differences and `largest_step` the longest step, both in units of the unknowns (K here). `jacobian` is that of a
+    neighbouring solution, used in place of finite differences at the start.
+
+    Raises:
+        NoSolutionError: not converged within `evaluations`, or no direction leads further.
+        NotCalculatedError: the residuals cannot be evaluated at the start.
+    """
+    x = list(start)
+    r = list(residuals(x))
+    count = 1
+    matrix: list[list[float]] | None = [list(row) for row in jacobian] if jacobian is not None else None
+    fresh = False
+    while max(abs(v) for v in r) > tolerance:
+        if count >= evaluations:
+            raise NoSolutionError(f"no balance was found in {count} trials; the last one misses by {_worst(r):.2g}")
+        if matrix is None:
+            matrix = _differences(residuals, x, r, difference)
+            count += len(x)
+            fresh = True
+        step = _limited(_linear(matrix, [-v for v in r]), largest_step)
+        moved = _move(residuals, x, r, step) if step is not None else None
+        count += moved[3] if moved else 6
+        if moved is None:
+            if fresh:
+                raise NoSolutionError(f"no direction leads to a balance; the best trial misses by {_worst(r):.2g}")
+            matrix = None
+            continue
+        x_new, r_new, taken, _ = moved
+        slow = _worst(r_new) > 0.5 * _worst(r)
+        matrix = None if slow and not fresh else _broyden(matrix, taken, [b - a for a, b in zip(r, r_new, strict=True)])
+        fresh = False
+        x, r = x_new, r_new
+    return Solution(tuple(x), tuple(r), count, tuple(tuple(row) for row in (matrix or _identity(len(x)))))
+
+
+def _worst(r: Sequence[float]) -> float:
+    return max(abs(v) for v in r)
+
+
+def _identity(n: int) -> list[list[float]]:
+    return [[1.0 if i == j else 0.0 for j in range(n)] for i in range(n)]
+
+
+def _differences(residuals: Residuals, x: list[float], r: list[float], step: float) -> list[list[float]]:
+    columns = []
+    for j in range(len(x)):
+        moved = list(x)
+        moved[j] += step
+        try:
+            r_moved = residuals(moved)
+            sign = 1.0
+        except NotCalculatedError:
+            moved[j] = x[j] - step
+            r_moved = residuals(moved)
+            sign = -1.0
+        columns.append([sign * (b - a) / step for a, b in zip(r, r_moved, strict=True)])
+    return [[columns[j][i] for j in range(len(x))] for i in range(len(r))]
+
+
+def _linear(matrix: list[list[float]], right: list[float]) -> list[float] | None:
+    """Gauss elimination with row exchange; None where the matrix is singular."""
+    n = len(right)
+    rows = [[*matrix[i], right[i]] for i in range(n)]
+    for i in range(n):
+        pivot = max(range(i, n), key=lambda k: abs(rows[k][i]))
+        if abs(rows[pivot][i]) < 1e-14:
+            return None
+        rows[i], rows[pivot] = rows[pivot], rows[i]
+        for k in range(i + 1, n):
+            factor = rows[k][i] / rows[i][i]
+            for j in range(i, n + 1):
+                rows[k][j] -= factor * rows[i][j]
+    x = [0.0] * n
+    for i in reversed(range(n)):
+        x[i] = (rows[i][n] - sum(rows[i][j] * x[j] for j in range(i + 1, n))) / rows[i][i]
+    return x
+
+
+def _limited(step: list[float] | None, largest: float) -> list[float] | None:
+    if step is None:
+        return None
+    longest = max(abs(v) for v in step)
+    return step if longest <= largest else [v * largest / longest for v in step]
+
+
+def _move(
+    residuals: Residuals, x: list[float], r: list[float], step: list[float]
+) -> tuple[list[float], list[float], list[float], int] | None:
+    """Take the step, halved up to five times while it cannot be evaluated or makes things clearly worse."""
+    for trial in range(6):
+        taken = [v * 0.5**trial for v in step]
+        x_new = [a + b for a, b in zip(x, taken, strict=True)]
+        try:
+            r_new = list(residuals(x_new))
+        except NotCalculatedError:
+            continue
+        if _worst(r_new) < 1.5 * _worst(r):
+            return x_new, r_new, taken, trial + 1
+    return None
+
+
+def _broyden(matrix: list[list[float]], step: list[float], change: list[float]) -> list[list[float]]:
+    square = sum(v * v for v in step)
+    if square == 0:
+        return matrix
+    n = len(step)
+    gap = [(change[i] - sum(matrix[i][j] * step[j] for j in range(n))) / square for i in range(n)]
+    return [[matrix[i][j] + gap[i] * step[j] for j in range(n)] for i in range(n)]

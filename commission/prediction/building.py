@@ -1,0 +1,280 @@
+"""From facts, assumption values and fitted levels to the plain dataclasses of the machine."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from commission.errors import NotCalculatedError
+from commission.machine import (
+    Compressor,
+    EfficiencyShape,
+    Exchanger,
+    HeadPressure,
+    Media,
+    SingleStage,
+    Stream,
+    SuctionLine,
+    air_stream,
+    conductance_for,
+    liquid_stream,
+)
+from commission.prediction.facts import CONDENSER_FAN, EVAPORATOR_FAN, Facts
+from commission.properties import Liquid
+
+KELVIN = 273.15
+
+
+@dataclass(frozen=True, slots=True)
+class Levels:
+    """What is fitted: swept flow times volumetric level (m3/s), isentropic level, conductances (W/K)."""
+
+    swept_flow: float
+    isentropic: float
+    condenser: float
+    evaporator: float
+
+    def logs(self) -> tuple[float, ...]:
+        """Natural logarithms, the unknowns of the fit."""
+        return tuple(math.log(v) for v in (self.swept_flow, self.isentropic, self.condenser, self.evaporator))
+
+    @classmethod
+    def from_logs(cls, logs: tuple[float, ...]) -> Levels:
+        """Inverse of `logs`."""
+        return cls(*(math.exp(v) for v in logs))
+
+
+@dataclass(frozen=True, slots=True)
+class Fans:
+    """Electric power in W of fans and pumps, and which of them the stated boundary counts (0-1 each)."""
+
+    source: float
+    sink: float
+    source_counted: float
+    sink_counted: float
+
+    def counted(self, sink_share: float) -> float:
+        """Power inside the boundary at a share of the sink's fan power."""
+        return self.source_counted * self.source + self.sink_counted * self.sink * sink_share
+
+
+@dataclass(frozen=True, slots=True)
+class Rated:
+    """The condition that levels belong to: media temperatures (K), expected heat (W), and the flows found there."""
+
+    source_temperature: float
+    sink_temperature: float
+    source_heat: float
+    sink_heat: float
+    source_flow: float
+    sink_flow: float
+
+
+@dataclass(frozen=True, slots=True)
+class Plan:
+    """All of one system that a prediction needs, for one set of assumption values and levels."""
+
+    machine: SingleStage
+    fans: Fans
+    rated: Rated
+    source_humidity: float
+    surroundings: float | None
+    power_factor: float
+
+
+def shape_of(facts: Facts, a: Mapping[str, float]) -> EfficiencyShape:
+    """The run of the efficiencies over pressure ratio for the type of compressor."""
+    ratio = a["compressor_volume_ratio"] if "compressor_volume_ratio" in a else None
+    return EfficiencyShape(
+        clearance=a["compressor_clearance"],
+        expansion_exponent=1.1,
+        leakage=a["compressor_leakage"],
+        loss_suction=a["compressor_suction_loss"],
+        loss_discharge=a["compressor_discharge_loss"],
+        built_in_volume_ratio=ratio,
+    )
+
+
+def humidity(facts: Facts, a: Mapping[str, float]) -> float:
+    """Relative humidity of source air; a liquid has none, 0 then."""
+    if facts.source_liquid is not None:
+        return 0.0
+    stated = facts.system.heat_source.relative_humidity
+    return stated if stated is not None else a["source_humidity"]
+
+
+def stream(temperature: float, flow: float, medium: Liquid | None, relative_humidity: float, pressure: float) -> Stream:
+    """Medium of one side entering its exchanger."""
+    if medium is not None:
+        return liquid_stream(temperature, flow, medium)
+    return air_stream(temperature, flow, relative_humidity, pressure)
+
+
+SINK_HUMIDITY = 0.5
+"""Humidity of sink air: it changes the capacity rate by less than 1 % and nothing else, so it is not asked for."""
+
+
+def flow_for(
+    heat: float, change: float, temperature: float, medium: Liquid | None, wet: float, pressure: float
+) -> float:
+    """Volume flow in m3/s that changes by `change` K when it takes or gives `heat` in W."""
+    unit = stream(temperature, 1.0, medium, wet, pressure)
+    return heat / (change * unit.capacity_rate)
+
+
+def fans_of(facts: Facts, a: Mapping[str, float], source_heat: float, sink_heat: float) -> Fans:
+    """Fans and pumps with the boundary that the supplier states."""
+    system = facts.system
+    includes = boundary(facts)
+    source_air, sink_air = facts.source_liquid is None, facts.sink_liquid is None
+
+    def counted(word: str) -> float:
+        return a["fans_in_rated_power"] if includes is None else float(word in includes)
+
+    source = sink = 0.0
+    source_counted = counted(EVAPORATOR_FAN if source_air else "source pump")
+    sink_counted = counted(CONDENSER_FAN if sink_air else "sink pump")
+    if source_air:
+        stated = system.evaporator.fan_power
+        source = stated if stated is not None else a["evaporator_fan_share"] * source_heat
+    elif includes is not None and source_counted:
+        source = a["pump_share"] * source_heat
+    if sink_air:
+        stated = system.condenser.fan_power
+        sink = stated if stated is not None else a["condenser_fan_share"] * sink_heat
+    elif includes is not None and sink_counted:
+        sink = a["pump_share"] * sink_heat
+    return Fans(source, sink, source_counted, sink_counted)
+
+
+def boundary(facts: Facts) -> tuple[str, ...] | None:
+    """What the power input counts as the supplier states it, or None where nobody says."""
+    for point in facts.system.rated_points:
+        if point.includes is not None:
+            return point.includes
+    unit = facts.system.condensing_unit
+    return unit.includes if unit is not None and not facts.system.rated_points else None
+
+
+def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) -> Plan:
+    """The machine for one set of assumption values and levels.
+
+    Raises:
+        NotCalculatedError: a stated rating cannot be, for example more heat than its air flow carries.
+    """
+    system = facts.system
+    wet = humidity(facts, a)
+    stated_superheat = system.expansion.superheat if system.expansion else None
+    superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
+    line, surroundings = suction_line(facts, a, rated, superheat)
+    displacement = system.compressor.displacement
+    compressor = Compressor(
+        displacement=displacement or levels.swept_flow,
+        volumetric_level=levels.swept_flow / displacement if displacement else 1.0,
+        isentropic_level=levels.isentropic,
+        shape=shape_of(facts, a),
+        shell_loss=a["shell_heat_loss_share"],
+    )
+    exponent = a["air_side_exponent"]
+    control = system.controls.head_pressure
+    held = None
+    if control is not None:
+        held = HeadPressure(
+            control.by, control.hold + a["head_pressure_departure"], a["least_fan_share"], a["fan_power_exponent"]
+        )
+    machine = SingleStage(
+        refrigerant=facts.fluid,
+        compressor=compressor,
+        evaporator=Exchanger(levels.evaporator, rated.source_flow, exponent),
+        condenser=Exchanger(levels.condenser, rated.sink_flow, exponent),
+        superheat=superheat,
+        subcooling=a["liquid_subcooling"],
+        suction_line=line,
+        discharge_line_loss=a["discharge_line_loss"],
+        head_pressure=held,
+    )
+    cos_phi = system.compressor.power_factor
+    return Plan(
+        machine=machine,
+        fans=fans_of(facts, a, rated.source_heat, rated.sink_heat),
+        rated=rated,
+        source_humidity=wet,
+        surroundings=surroundings,
+        power_factor=cos_phi if cos_phi is not None else a["power_factor"],
+    )
+
+
+def outdoors_is_sink(facts: Facts) -> bool:
+    """Whether the pipes stand in the air that the sink exchanger draws: cooling with an air-cooled condenser."""
+    return facts.sink_liquid is None and facts.system.duty in ("cold_storage", "comfort_cooling", "liquid_cooling")
+
+
+def suction_line(
+    facts: Facts, a: Mapping[str, float], rated: Rated, superheat: float
+) -> tuple[SuctionLine, float | None]:
+    """The suction line, and the temperature (K) around it where that is not the sink's air.
+
+    The pick-up is stated at the rated condition. Where the pipe runs through the air of the sink it follows the
+    difference between that air and the gas; elsewhere it is constant.
+    """
+    pick_up = a["suction_line_superheat"]
+    gas = rated.source_temperature - 8.0 + superheat
+    difference = rated.sink_temperature - gas
+    if outdoors_is_sink(facts) and difference > 10.0:
+        return SuctionLine(a["suction_line_loss"], heating_share=pick_up / difference), None
+    return SuctionLine(a["suction_line_loss"], warming=pick_up), a["surroundings_temperature"]
+
+
+def media(facts: Facts, plan: Plan, conditions: Mapping[str, float]) -> Media:
+    """The media at a condition (keys of the nomenclature, SI)."""
+    wet = conditions.get("heat_source_relative_humidity", plan.source_humidity)
+    source = stream(
+        conditions["heat_source_inlet_temperature"],
+        conditions.get("heat_source_flow", plan.rated.source_flow),
+        facts.source_liquid,
+        wet,
+        facts.pressure,
+    )
+    sink = stream(
+        conditions["heat_sink_inlet_temperature"],
+        conditions.get("heat_sink_flow", plan.rated.sink_flow),
+        facts.sink_liquid,
+        SINK_HUMIDITY,
+        facts.pressure,
+    )
+    around = sink.inlet_temperature if plan.surroundings is None else plan.surroundings
+    return Media(source, sink, around)
+
+
+def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: float) -> float | None:
+    """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
+    part = facts.system.evaporator
+    if part.conductance is not None:
+        return part.conductance
+    if part.rating is None:
+        return None
+    rating = part.rating
+    air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
+    medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
+    return _rating("evaporator", rating.capacity, rating.temperature_difference, medium)
+
+
+def condenser_conductance(facts: Facts, sink_flow: float) -> float | None:
+    """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
+    part = facts.system.condenser
+    if part.conductance is not None:
+        return part.conductance
+    if part.rating is None:
+        return None
+    rating = part.rating
+    air_on = rating.air_on if rating.air_on is not None else 25.0 + KELVIN
+    medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    return _rating("condenser", rating.capacity, rating.temperature_difference, medium)
+
+
+def _rating(what: str, capacity: float, difference: float, medium: Stream) -> float:
+    try:
+        return conductance_for(capacity, difference, medium.capacity_rate)
+    except NotCalculatedError as error:
+        raise NotCalculatedError(f"the rating of the {what} and the flow cannot both be right: {error}") from None

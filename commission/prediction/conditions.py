@@ -1,0 +1,99 @@
+"""The condition a prediction is asked for: which quantities may be set, over which range, and their rated values."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from commission.errors import InputError, Problem, nearest
+from commission.prediction.building import Plan
+from commission.prediction.facts import Facts
+from commission.prediction.rated import Case
+from commission.quantities import NOMENCLATURE
+
+KELVIN = 273.15
+
+
+@dataclass(frozen=True, slots=True)
+class ConditionAxis:
+    """One quantity of the condition, SI: its rated value and the range over which expectations are shown."""
+
+    key: str
+    rated: float
+    low: float
+    high: float
+
+
+def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]:
+    """The quantities that set the condition of this system, in the order in which a person would ask for them."""
+    rated = plan.rated
+    source, sink = _design(facts, plan)
+    axes = [_temperature_axis(facts, "heat_source", source), _temperature_axis(facts, "heat_sink", sink)]
+    if facts.source_liquid is None:
+        wet = plan.source_humidity
+        axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
+    for key, flow in (("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)):
+        axes.append(ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow))
+    return {axis.key: axis for axis in axes}
+
+
+def _design(facts: Facts, plan: Plan) -> tuple[float, float]:
+    design = facts.system.design
+    source, sink = plan.rated.source_temperature, plan.rated.sink_temperature
+    if design is not None:
+        source = design.heat_source_inlet_temperature or source
+        sink = design.heat_sink_inlet_temperature or sink
+    return source, sink
+
+
+def _temperature_axis(facts: Facts, side: str, rated: float) -> ConditionAxis:
+    """Outdoor air spans the weather of the site and 5 K more; rooms and liquids span what a visit may meet."""
+    system = facts.system
+    medium = system.heat_source if side == "heat_source" else system.heat_sink
+    space = facts.loaded.plant.spaces.get(medium.space or "")
+    heating = system.duty in ("space_heating", "water_heating")
+    outdoors = medium.medium == "air" and (space.outdoors if space is not None else (side == "heat_source") == heating)
+    key = f"{side}_inlet_temperature"
+    if outdoors:
+        climate = facts.loaded.plant.plant.climate
+        low = (climate.winter_dry_bulb if climate.winter_dry_bulb is not None else KELVIN - 10.0) - 5.0
+        high = (climate.summer_dry_bulb if climate.summer_dry_bulb is not None else KELVIN + 33.0) + 5.0
+        return ConditionAxis(key, rated, min(low, rated - 5.0), max(high, rated + 5.0))
+    if side == "heat_source":
+        return ConditionAxis(key, rated, rated - 6.0, rated + 12.0)
+    return ConditionAxis(key, rated, rated - 15.0, rated + 20.0)
+
+
+def complete(
+    axes: Mapping[str, ConditionAxis], given: Mapping[str, float] | None
+) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
+    """The whole condition, the keys filled from the rated one, and a warning for each value outside its range.
+
+    Raises:
+        InputError: a key that this system has no condition for, or a value that is no finite number.
+    """
+    given = dict(given or {})
+    problems = []
+    for key, value in given.items():
+        if key not in axes:
+            problems.append(
+                Problem(
+                    "this is no condition of this system",
+                    value=key,
+                    allowed=", ".join(axes),
+                    nearest=nearest(key, axes),
+                )
+            )
+        elif not math.isfinite(value):
+            problems.append(Problem("a condition must be a finite number", value=str(value), path=key))
+    if problems:
+        raise InputError(*problems)
+    whole = {key: given.get(key, axis.rated) for key, axis in axes.items()}
+    filled = tuple(key for key in axes if key not in given)
+    outside = tuple(
+        f"{NOMENCLATURE[key].label} lies outside the range for which this system is described"
+        for key, axis in axes.items()
+        if not axis.low - 1e-9 <= whole[key] <= axis.high + 1e-9
+    )
+    return whole, filled, outside

@@ -1,0 +1,104 @@
+"""From an operating point to the quantities of the nomenclature that a person reads or calculates on site. SI units."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+
+from commission.errors import NotCalculatedError
+from commission.machine import Media, OperatingPoint, carnot_cooling, entropic_mean
+from commission.machine.wet_air import leaving_air
+from commission.prediction.building import Plan
+from commission.prediction.facts import Facts
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Values by key of the nomenclature, and reasons for the keys that have none."""
+
+    values: dict[str, float]
+    reasons: dict[str, str]
+
+
+def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoint) -> Found:
+    """All quantities at one operating point."""
+    source, sink = media.source, media.sink
+    power = point.compression.power + plan.fans.counted(point.sink_fan_share)
+    fan = plan.fans.source if facts.source_liquid is None else 0.0
+    values = {
+        "evaporating_temperature": point.evaporating_temperature,
+        "condensing_temperature": point.condensing_temperature,
+        "suction_pressure": point.suction_pressure,
+        "discharge_pressure": point.discharge_pressure,
+        "suction_temperature": point.suction_temperature,
+        "discharge_temperature": point.discharge_temperature,
+        "liquid_temperature": point.liquid_temperature,
+        "superheat": point.superheat,
+        "compressor_superheat": point.compressor_superheat,
+        "subcooling": point.subcooling,
+        "evaporator_temperature_difference": source.inlet_temperature - point.evaporating_temperature,
+        "condenser_temperature_difference": point.condensing_temperature - sink.inlet_temperature,
+        "pressure_ratio": point.compression.pressure_ratio,
+        "refrigerant_flow": point.compression.flow,
+        "cooling_capacity": point.heat_from_source,
+        "net_cooling_capacity": point.heat_from_source - fan,
+        "heating_capacity": point.heat_to_sink,
+        "compressor_power": point.compression.power,
+        "fan_power": plan.fans.counted(point.sink_fan_share),
+        "power_input": power,
+        "cooling_cop": point.heat_from_source / power,
+        "heating_cop": point.heat_to_sink / power,
+    }
+    found = Found(values, {})
+    _add(found, "current", lambda: _current(facts, plan, power))
+    _media(facts, plan, media, point, found)
+    if facts.source_liquid is not None:
+        del values["net_cooling_capacity"]
+    return found
+
+
+def _add(found: Found, key: str, calculate: Callable[[], float]) -> None:
+    try:
+        found.values[key] = calculate()
+    except NotCalculatedError as error:
+        found.reasons[key] = str(error)
+
+
+def _current(facts: Facts, plan: Plan, power: float) -> float:
+    plate = facts.system.nameplate
+    if plate.voltage is None or plate.phases is None:
+        raise NotCalculatedError("the nameplate's voltage and number of phases are not stated")
+    lines = math.sqrt(3.0) if plate.phases == "3" else 1.0
+    return power / (lines * plate.voltage * plan.power_factor)
+
+
+def _media(facts: Facts, plan: Plan, media: Media, point: OperatingPoint, found: Found) -> None:
+    source, sink = media.source, media.sink
+    sink_out = sink.inlet_temperature + point.heat_to_sink / (point.sink_flow_share * sink.capacity_rate)
+    if source.air is not None:
+        source_out = leaving_air(source, point.heat_from_source, point.evaporating_temperature).temperature
+    else:
+        source_out = source.inlet_temperature - point.heat_from_source / source.capacity_rate
+    found.values["heat_sink_outlet_temperature"] = sink_out
+    found.values["heat_sink_temperature_change"] = sink_out - sink.inlet_temperature
+    found.values["heat_source_outlet_temperature"] = source_out
+    found.values["heat_source_temperature_change"] = source.inlet_temperature - source_out
+    _add(
+        found,
+        "carnot_cop",
+        lambda: carnot_cooling(
+            entropic_mean(source.inlet_temperature, source_out), entropic_mean(sink.inlet_temperature, sink_out)
+        ),
+    )
+
+
+LAWS: Mapping[str, str] = {
+    "carnot": "the COP of the compressor alone is above Carnot between the media",
+}
+
+
+def beats_carnot(values: Mapping[str, float]) -> bool:
+    """Whether cooling over compressor power lies above the Carnot COP of the media."""
+    limit = values.get("carnot_cop")
+    return limit is not None and values["cooling_capacity"] / values["compressor_power"] > limit

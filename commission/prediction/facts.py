@@ -1,0 +1,78 @@
+"""What the physics needs of one system: stated facts with their place, assumptions where nothing is stated."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field
+
+from commission.description import Assumption, LoadedPlant, System
+from commission.properties import Liquid, Refrigerant, liquid, refrigerant
+from commission.quantities import Input, Kind
+
+COMPRESSOR, CONDENSER_FAN, EVAPORATOR_FAN = "compressor", "condenser fan", "evaporator fan"
+
+
+class Used(Mapping[str, float]):
+    """Values of the assumption list that remembers which of them were asked for."""
+
+    def __init__(self, values: Mapping[str, float]) -> None:
+        self._values = dict(values)
+        self.keys_used: set[str] = set()
+
+    def __getitem__(self, key: str) -> float:
+        self.keys_used.add(key)
+        return self._values[key]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._values)
+
+    def __len__(self) -> int:
+        return len(self._values)
+
+
+@dataclass(frozen=True)
+class Facts:
+    """One system of a plant, its refrigerant, its media and its assumption list."""
+
+    loaded: LoadedPlant
+    identity: str
+    system: System
+    fluid: Refrigerant
+    assumptions: Mapping[str, Assumption]
+    source_liquid: Liquid | None
+    sink_liquid: Liquid | None
+    stated: dict[str, Input] = field(default_factory=dict)
+
+    @property
+    def pressure(self) -> float:
+        """Barometric pressure of the site in Pa."""
+        return self.loaded.barometric_pressure
+
+    @property
+    def nominal(self) -> dict[str, float]:
+        """The assumption list as plain values."""
+        return {key: a.value for key, a in self.assumptions.items()}
+
+    def origin(self, path: str) -> str:
+        """Place in the description, such as `plant.yaml:64`, of a key path below the system."""
+        place = self.loaded.where(f"systems.{self.identity}.{path}")
+        return f"{place.file}:{place.line}"
+
+    def input(self, name: str, value: float, kind: Kind, path: str) -> Input:
+        """A stated value as an input of a calculation."""
+        return Input(name, value, kind, self.origin(path))
+
+
+def facts_of(loaded: LoadedPlant, identity: str) -> Facts:
+    """The facts of one system.
+
+    Raises:
+        InputError: no such system, or a refrigerant that is not known.
+    """
+    system = loaded.system(identity)
+    media = []
+    for side in (system.heat_source, system.heat_sink):
+        media.append(None if side.medium == "air" else liquid(side.medium, side.mass_fraction or 0.0))
+    return Facts(
+        loaded, identity, system, refrigerant(system.refrigerant), loaded.assumptions(identity), media[0], media[1]
+    )

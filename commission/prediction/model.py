@@ -1,0 +1,243 @@
+"""The fitted model of one system: expected readings at any condition, with what their uncertainty comes from."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+
+from commission.description import Assumption, LoadedPlant
+from commission.errors import CommissionError, NotCalculatedError
+from commission.machine import OperatingPoint, StatePoint
+from commission.prediction.building import Plan, media
+from commission.prediction.conditions import ConditionAxis, axes_of, complete
+from commission.prediction.expected import Found, beats_carnot, expected_values
+from commission.prediction.explaining import explain
+from commission.prediction.facts import Facts, facts_of
+from commission.prediction.fitting import SCATTER, Fit, fit_system
+from commission.prediction.rated import reference
+from commission.properties import Refrigerant
+from commission.quantities import Explained, Input, Kind
+
+PROPERTY = "property source"
+RATED_FIGURES = ("cooling_capacity", "net_cooling_capacity", "heating_capacity", "compressor_power", "power_input")
+"""Quantities that carry the scatter of rated points about the fit themselves."""
+
+
+@dataclass(frozen=True, slots=True)
+class Prediction:
+    """What one system should read at one condition. All values SI, pressures absolute.
+
+    `filled` lists the conditions that were not given and taken from the rated one. `parts` holds, for each expected
+    key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root sum of
+    squares. `not_calculated` gives the reason for each quantity that has no value.
+    """
+
+    system: str
+    conditions: Mapping[str, float]
+    filled: tuple[str, ...]
+    regime: str
+    expected: Mapping[str, Explained]
+    not_calculated: Mapping[str, str]
+    states: tuple[StatePoint, ...]
+    warnings: tuple[str, ...]
+    parts: Mapping[str, Mapping[str, float]]
+
+
+@dataclass
+class _Starts:
+    """Operating points of the last prediction, to start the next; they change the speed, not the result."""
+
+    nominal: OperatingPoint | None = None
+    variants: dict[int, OperatingPoint] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
+class SystemModel:
+    """One system fitted to what its supplier states."""
+
+    system_id: str
+    name: str
+    refrigerant: Refrigerant
+    condition_axes: Mapping[str, ConditionAxis]
+    assumptions: Mapping[str, Assumption]
+    design_sources: tuple[str, ...]
+    fitted: Mapping[str, Input]
+    fit: Fit
+    facts: Facts
+
+    @property
+    def rated_condition(self) -> dict[str, float]:
+        """The rated value of each condition, SI."""
+        return {key: axis.rated for key, axis in self.condition_axes.items()}
+
+    def predict(self, conditions: Mapping[str, float] | None = None) -> Prediction:
+        """Expected values at a condition (keys of the nomenclature, SI); None means the rated condition.
+
+        Raises:
+            InputError: a key that is no condition of this system.
+            NotCalculatedError: the machine has no balance there; the message says why.
+        """
+        return self._predict(conditions, _Starts())
+
+    def grid(
+        self, key: str, values: Sequence[float], others: Mapping[str, float] | None = None
+    ) -> tuple[Prediction | NotCalculatedError, ...]:
+        """Predictions along one condition, each started from its neighbour; where there is none, the reason."""
+        starts = _Starts()
+        found: list[Prediction | NotCalculatedError] = []
+        for value in values:
+            try:
+                found.append(self._predict({**(others or {}), key: value}, starts))
+            except NotCalculatedError as error:
+                found.append(error)
+        return tuple(found)
+
+    def sensitivities(self, conditions: Mapping[str, float] | None = None) -> dict[str, dict[str, float]]:
+        """Change of each expected quantity per unit of each condition, SI, by central differences.
+
+        At the edge of a regime (head pressure just held) the two sides differ; the mean of both is given.
+
+        Raises:
+            InputError, NotCalculatedError: as `predict`.
+        """
+        whole, _, _ = complete(self.condition_axes, conditions)
+        _, start = self._values(self.fit.plan, whole, None)
+        table: dict[str, dict[str, float]] = {}
+        for key in whole:
+            step = 0.1 if NOMINAL_STEP.get(key, 0.0) == 0.0 else NOMINAL_STEP[key] * whole[key]
+            low, _ = self._values(self.fit.plan, {**whole, key: whole[key] - step}, start)
+            high, _ = self._values(self.fit.plan, {**whole, key: whole[key] + step}, start)
+            for name in low.values.keys() & high.values.keys():
+                table.setdefault(name, {})[key] = (high.values[name] - low.values[name]) / (2 * step)
+        return table
+
+    def assumption_effects(self, conditions: Mapping[str, float] | None = None) -> dict[str, dict[str, float]]:
+        """Change of each expected quantity per +1 standard uncertainty of each assumption in use, refit included.
+
+        Raises:
+            InputError, NotCalculatedError: as `predict`.
+        """
+        whole, _, _ = complete(self.condition_axes, conditions)
+        nominal, start = self._values(self.fit.plan, whole, None)
+        effects: dict[str, dict[str, float]] = {}
+        for cause, change, _ in self._changes(whole, nominal, start, _Starts()):
+            if cause != SCATTER:
+                effects[cause] = change
+        return effects
+
+    def _values(
+        self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
+    ) -> tuple[Found, OperatingPoint]:
+        around = media(self.facts, plan, whole)
+        point = plan.machine.operate(around, start)
+        return expected_values(self.facts, plan, around, point), point
+
+    def _changes(
+        self, whole: Mapping[str, float], nominal: Found, start: OperatingPoint, starts: _Starts
+    ) -> list[tuple[str, dict[str, float], OperatingPoint]]:
+        changes = []
+        for n, variant in enumerate(self.fit.variants):
+            asked = {**whole}
+            if variant.cause == "source_humidity":
+                asked.pop("heat_source_relative_humidity", None)
+            found, point = self._values(variant.plan, asked, starts.variants.get(n, start))
+            starts.variants[n] = point
+            change = {k: variant.sign * (found.values[k] - v) for k, v in nominal.values.items() if k in found.values}
+            changes.append((variant.cause, change, point))
+        return changes
+
+    def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
+        whole, filled, outside = complete(self.condition_axes, conditions)
+        nominal, point = self._values(self.fit.plan, whole, starts.nominal)
+        starts.nominal = point
+        parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
+        directions = 0
+        for cause, change, _ in self._changes(whole, nominal, point, starts):
+            name = cause
+            if cause == SCATTER:
+                directions += 1
+                name = cause if directions == 1 else f"{cause} ({directions})"
+            for key, amount in change.items():
+                if amount != 0.0:
+                    parts[key][name] = amount
+        self._own_parts(nominal, parts)
+        expected = explain(self.facts, self.fit, whole, point, nominal, parts)
+        warnings = [*outside, *point.warnings]
+        if beats_carnot(nominal.values):
+            warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")
+        return Prediction(
+            self.system_id, whole, filled, point.regime, expected, nominal.reasons, point.states, tuple(warnings), parts
+        )
+
+    def _own_parts(self, nominal: Found, parts: dict[str, dict[str, float]]) -> None:
+        """What a value carries by itself: the property source for pressures, the scatter for rated figures."""
+        u = self.refrigerant.pressure_relative_uncertainty
+        for key in ("suction_pressure", "discharge_pressure"):
+            parts[key][PROPERTY] = u * nominal.values[key]
+        if self.fit.scatter > 0:
+            for key in RATED_FIGURES:
+                if key in nominal.values:
+                    parts[key][f"{SCATTER} about the fit"] = self.fit.scatter * nominal.values[key]
+            for key in ("cooling_cop", "heating_cop"):
+                if key in nominal.values:
+                    parts[key][f"{SCATTER} about the fit"] = math.sqrt(2) * self.fit.scatter * nominal.values[key]
+
+
+NOMINAL_STEP = {
+    "heat_source_relative_humidity": 0.005,
+    "heat_source_flow": 0.005,
+    "heat_sink_flow": 0.005,
+    "compressor_speed": 0.005,
+}
+"""Relative step of the central differences; temperatures take 0.1 K."""
+
+
+def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
+    """Fit one system of a plant to what its supplier states.
+
+    Raises:
+        InputError: no such system, or a refrigerant that is not known.
+        NotCalculatedError: too little is stated, or what is stated cannot be; the message says which.
+    """
+    facts = facts_of(loaded, system_id)
+    found = fit_system(facts)
+    case = found.cases[reference(found.cases)]
+    plan = found.plan
+    axes = axes_of(facts, plan, case)
+    return SystemModel(
+        system_id=system_id,
+        name=facts.system.name or system_id,
+        refrigerant=facts.fluid,
+        condition_axes=axes,
+        assumptions=found.used,
+        design_sources=tuple(c.origin for c in found.cases),
+        fitted=_fitted(facts, found),
+        fit=found,
+        facts=facts,
+    )
+
+
+def _fitted(facts: Facts, found: Fit) -> dict[str, Input]:
+    """What the fit found, for review: efficiencies at the rated points, levels, conductances."""
+    machine = found.plan.machine
+    point = found.points[reference(found.cases)]
+    values: list[tuple[str, float, Kind]] = [
+        ("isentropic efficiency at the rated point", point.compression.isentropic_efficiency, Kind.RATIO),
+        ("swept flow times volumetric level", found.levels.swept_flow, Kind.VOLUME_FLOW),
+        ("conductance of the condenser", machine.condenser.conductance, Kind.CONDUCTANCE),
+        ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
+        ("condensing temperature at the rated point", point.condensing_temperature, Kind.TEMPERATURE),
+        ("evaporating temperature at the rated point", point.evaporating_temperature, Kind.TEMPERATURE),
+        ("discharge temperature at the rated point", point.discharge_temperature, Kind.TEMPERATURE),
+    ]
+    if facts.system.compressor.displacement is not None:
+        values.insert(
+            0, ("volumetric efficiency at the rated point", point.compression.volumetric_efficiency, Kind.RATIO)
+        )
+    if found.dof:
+        values.append(("scatter of rated points about the fit", found.scatter, Kind.RATIO))
+    return {name: Input(name, value, kind, "fitted") for name, value, kind in values}
+
+
+__all__ = ["CommissionError", "Prediction", "SystemModel", "fit"]

@@ -1,0 +1,246 @@
+"""What the supplier states, as data for the fit: each rated point with the values the model must reproduce there."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+
+from commission.description.model import CondensingUnit, RatedPoint
+from commission.errors import NotCalculatedError
+from commission.machine import Media, OperatingPoint
+from commission.prediction.building import (
+    SINK_HUMIDITY,
+    Plan,
+    Rated,
+    flow_for,
+    humidity,
+    media,
+)
+from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
+
+MARGIN = 0.015
+"""Relative standard uncertainty of one figure of a table with many points, until the scatter tells a better one:
+catalogue points miss the first law by 2 to 4 % through rounding and boundary."""
+
+
+@dataclass(frozen=True, slots=True)
+class Datum:
+    """One value to be reproduced at a rated point. `of` names what the model calculates; `sigma` is in its unit.
+
+    `assumption` is the key of the assumption list that gave the value, None where the description states it.
+    """
+
+    of: str
+    value: float
+    sigma: float
+    origin: str
+    assumption: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Case:
+    """One rated point: condition and data. `unit` holds where the condensing unit is rated apart from its cooler."""
+
+    source_temperature: float
+    sink_temperature: float
+    conditions: Mapping[str, float]
+    data: tuple[Datum, ...]
+    origin: str
+    unit: UnitRating | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class UnitRating:
+    """How a condensing unit is rated: dew point at its suction (K); superheat and subcooling, None where assumed."""
+
+    evaporating: float
+    superheat: float | None
+    subcooling: float | None
+    counts_fan: bool | None
+
+
+def cases_of(facts: Facts) -> tuple[Case, ...]:
+    """All rated points of the system, or those of its condensing unit where the system as a whole has none.
+
+    Raises:
+        NotCalculatedError: the description states no rated point from which the machine could be known.
+    """
+    system = facts.system
+    if system.rated_points:
+        return tuple(_system_case(facts, n, point) for n, point in enumerate(system.rated_points))
+    if system.condensing_unit is not None:
+        return _unit_cases(facts, system.condensing_unit)
+    raise NotCalculatedError(
+        "the description has no rated point: state under rated_points a cooling or heating capacity and its power "
+        "input at one condition, or the rated points of the condensing unit"
+    )
+
+
+def _system_case(facts: Facts, number: int, point: RatedPoint) -> Case:
+    origin = facts.origin(f"rated_points.{number}")
+    conditions = {k: v for k, v in _conditions(point).items() if v is not None}
+    source = conditions.get("heat_source_inlet_temperature", conditions.get("heat_source_outlet_temperature"))
+    sink = conditions.get("heat_sink_inlet_temperature", conditions.get("heat_sink_outlet_temperature"))
+    if source is None or sink is None:
+        missing = "heat_source_inlet_temperature" if source is None else "heat_sink_inlet_temperature"
+        raise NotCalculatedError(f"the rated point at {origin} does not say its {missing}")
+    data = []
+    for key in ("cooling_capacity", "heating_capacity", "power_input"):
+        value = getattr(point, key)
+        if value is not None:
+            data.append(Datum(key, value, MARGIN * value, facts.origin(f"rated_points.{number}.{key}")))
+    for key in ("evaporating_temperature", "condensing_temperature"):
+        value = getattr(point, key)
+        if value is not None:
+            data.append(Datum(key, value, 0.3, facts.origin(f"rated_points.{number}.{key}")))
+    return Case(source, sink, conditions, tuple(data), origin)
+
+
+def _conditions(point: object) -> dict[str, float | None]:
+    from commission.description.model import Conditions
+
+    return {key: getattr(point, key) for key in Conditions.model_fields}
+
+
+def _unit_cases(facts: Facts, unit: CondensingUnit) -> tuple[Case, ...]:
+    cases = []
+    counts = None if unit.includes is None else CONDENSER_FAN in unit.includes
+    if unit.includes is not None and COMPRESSOR not in unit.includes:
+        raise NotCalculatedError("the power of the condensing unit does not include its compressor")
+    for number, point in enumerate(unit.rated_points):
+        path = f"condensing_unit.rated_points.{number}"
+        superheat = unit.suction_superheat
+        if superheat is None and unit.suction_temperature is not None:
+            superheat = unit.suction_temperature - point.evaporating_temperature
+        data = tuple(
+            Datum(key, value, MARGIN * value, facts.origin(f"{path}.{key}"))
+            for key, value in (("cooling_capacity", point.cooling_capacity), ("power_input", point.power_input))
+        )
+        rating = UnitRating(point.evaporating_temperature, superheat, unit.liquid_subcooling, counts)
+        cases.append(
+            Case(
+                source_temperature=point.evaporating_temperature,
+                sink_temperature=point.heat_sink_inlet_temperature,
+                conditions={"heat_sink_inlet_temperature": point.heat_sink_inlet_temperature},
+                data=data,
+                origin=facts.origin(path),
+                unit=rating,
+            )
+        )
+    return tuple(cases)
+
+
+def reference(cases: tuple[Case, ...]) -> int:
+    """Number of the case nearest to the middle of all: the one that the assumed differences belong to."""
+    middle = [
+        sum(c.source_temperature for c in cases) / len(cases),
+        sum(c.sink_temperature for c in cases) / len(cases),
+    ]
+
+    def distance(case: Case) -> float:
+        return abs(case.source_temperature - middle[0]) + abs(case.sink_temperature - middle[1])
+
+    return min(range(len(cases)), key=lambda n: distance(cases[n]))
+
+
+def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
+    """Heat and flows at the reference point; flows that nobody states follow from an assumed temperature change."""
+    given = {d.of: d.value for d in case.data if d.assumption is None}
+    power = given.get("power_input", 0.0)
+    if "cooling_capacity" in given:
+        cooling = given["cooling_capacity"]
+        heating = given.get("heating_capacity", cooling + (power or 0.3 * cooling))
+    elif "heating_capacity" in given:
+        heating = given["heating_capacity"]
+        cooling = heating - (power or 0.25 * heating)
+    elif facts.system.compressor.displacement is not None and power:
+        cooling, heating = 2.5 * power, 3.5 * power
+    else:
+        raise NotCalculatedError(
+            f"the rated point at {case.origin} states no capacity, and the displacement of the compressor is not "
+            "stated either"
+        )
+    if cooling <= 0:
+        raise NotCalculatedError(f"at {case.origin} more power goes in than heat comes out: no heat is left to take up")
+    source_temperature, sink_temperature = _temperatures(facts, a, case)
+    wet = humidity(facts, a)
+    source_flow = case.conditions.get("heat_source_flow", facts.system.heat_source.flow)
+    if source_flow is None:
+        change = a["source_temperature_change"]
+        source_flow = flow_for(cooling, change, source_temperature, facts.source_liquid, wet, facts.pressure)
+    sink_flow = case.conditions.get("heat_sink_flow", facts.system.heat_sink.flow)
+    if sink_flow is None:
+        change = a["sink_temperature_change"]
+        sink_flow = flow_for(heating, change, sink_temperature, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow)
+
+
+def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[float, float]:
+    """Media temperatures of the reference point; a condensing unit's table knows no source, its design does."""
+    if case.unit is None:
+        return case.source_temperature, case.sink_temperature
+    design = facts.system.design
+    rating = facts.system.evaporator.rating
+    if design is not None and design.heat_source_inlet_temperature is not None:
+        return design.heat_source_inlet_temperature, case.sink_temperature
+    if rating is not None and rating.air_on is not None:
+        return rating.air_on, case.sink_temperature
+    difference = rating.temperature_difference if rating is not None else a["source_minus_evaporating"]
+    return case.unit.evaporating + difference, case.sink_temperature
+
+
+def simulate(
+    facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start: OperatingPoint | None
+) -> OperatingPoint:
+    """The operating point of the model at a rated point.
+
+    Raises:
+        NotCalculatedError: there is none.
+    """
+    if case.unit is None:
+        return plan.machine.operate(media(facts, plan, case.conditions), start)
+    around = _unit_media(facts, plan, case)
+    unit = case.unit
+    superheat = unit.superheat if unit.superheat is not None else a["rating_superheat"]
+    subcooling = unit.subcooling if unit.subcooling is not None else a["rating_subcooling"]
+    return plan.machine.condensing_unit(unit.evaporating, superheat, subcooling, around, start)
+
+
+def _unit_media(facts: Facts, plan: Plan, case: Case) -> Media:
+    conditions = {**case.conditions, "heat_source_inlet_temperature": plan.rated.source_temperature}
+    return media(facts, plan, conditions)
+
+
+def observed(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, float], of: str) -> float:
+    """What the model calculates for one datum, in SI."""
+    if of == "cooling_capacity":
+        return point.heat_from_source
+    if of == "heating_capacity":
+        return point.heat_to_sink
+    if of == "power_input":
+        return point.compression.power + _fans_counted(plan, case, point, a)
+    if of == "evaporating_temperature":
+        return point.evaporating_temperature
+    if of == "condensing_temperature":
+        return point.condensing_temperature
+    if of == "source_minus_evaporating":
+        return case.source_temperature - point.evaporating_temperature
+    if of == "condensing_minus_sink_inlet":
+        return point.condensing_temperature - case.sink_temperature
+    if of == "isentropic_efficiency":
+        return point.compression.isentropic_efficiency
+    if of == "volumetric_efficiency":
+        return point.compression.volumetric_efficiency
+    raise KeyError(of)
+
+
+def _fans_counted(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, float]) -> float:
+    if case.unit is None:
+        return plan.fans.counted(point.sink_fan_share)
+    share = a["fans_in_rated_power"] if case.unit.counts_fan is None else float(case.unit.counts_fan)
+    return share * plan.fans.sink * point.sink_fan_share
+
+
+def with_data(case: Case, extra: tuple[Datum, ...]) -> Case:
+    """The case with further data to reproduce."""
+    return replace(case, data=case.data + extra)
