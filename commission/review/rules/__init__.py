@@ -1,0 +1,1 @@
+"""The rules, one idea a file; `commission.review.table` lists them."""

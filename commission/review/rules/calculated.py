@@ -1,0 +1,52 @@
+"""Systems, and single values, that could not be calculated."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from commission.review.facts import SystemFacts
+from commission.review.finding import Remark
+
+
+def not_calculated(facts: SystemFacts) -> Iterator[Remark]:
+    """No fitted model, or no expectation at the design condition or on the hottest or coldest day.
+
+    Source: nothing is substituted silently; what cannot be calculated says why.
+    """
+    if facts.model is None:
+        yield Remark(
+            "warning",
+            facts.path(),
+            f"{facts.title}: not calculated: because {facts.reason}",
+            (),
+            "Correct or complete the description; until then no reading of this system can be judged.",
+        )
+        return
+    for outlook in facts.outlooks.values():
+        if outlook.prediction is None:
+            yield Remark(
+                "warning",
+                facts.path(),
+                f"{facts.title} {outlook.name}: not calculated: because {outlook.reason}",
+                (),
+                "Check the condition, the climate of the site and the rated points.",
+            )
+
+
+def warned(facts: SystemFacts) -> Iterator[Remark]:
+    """What the prediction itself warns of at the design condition and on the hottest and coldest day.
+
+    Source: the physics says so where it leaves the range it was fitted to or a property its range.
+    """
+    seen: set[str] = set()
+    for outlook in facts.outlooks.values():
+        for warning in outlook.prediction.warnings if outlook.prediction else ():
+            if warning not in seen:
+                seen.add(warning)
+                yield Remark(
+                    "note",
+                    facts.path(),
+                    f"{facts.title} {outlook.name}: {warning}",
+                    (),
+                    "Take the expected readings of such a day with this in mind.",
+                )

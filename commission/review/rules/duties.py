@@ -1,0 +1,99 @@
+"""Charge against the rooms, and what the refrigerant law says of new equipment."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from importlib.resources import files
+from typing import Any
+
+from commission.quantities import Kind, parse
+from commission.review.facts import SystemFacts
+from commission.review.finding import Figure, Remark
+
+
+def charge_over_limit(facts: SystemFacts) -> Iterator[Remark]:
+    """A charge above the lowest limit of the documents for a space that the refrigerant can reach.
+
+    Source: the charge limits of the safety room, each with its document and mark; most are from memory, so this is a
+    warning that sends the reader to the document.
+    """
+    for space in facts.spaces:
+        lowest = space.lowest
+        if not space.over or lowest is None or lowest.value is None or space.charge is None:
+            continue
+        yield Remark(
+            "warning",
+            facts.path("charge"),
+            f"The charge of {facts.title} is above the lowest charge limit for {space.name}.",
+            (
+                facts.plant.figure("charge", space.charge, Kind.MASS),
+                facts.plant.figure("lowest limit", lowest.value.value, Kind.MASS),
+                Figure("rule applied", lowest.rule),
+            ),
+            f"Less charge, a larger or ventilated room, or measures that the document names: {space.advice}.",
+            f"{lowest.document}, {lowest.edition}" if lowest.edition else lowest.document,
+            lowest.mark,
+        )
+
+
+def law_dates(facts: SystemFacts) -> Iterator[Remark]:
+    """Dates after which new equipment of this kind with this refrigerant may no longer be placed on the market.
+
+    Source: `market_dates.yaml`. With a day of the visit, dates that have passed are warnings; all others are notes.
+    A plant that stands already may go on.
+    """
+    from commission.safety import substance_of
+
+    law = facts.plant.loaded.plant.plant.rules.refrigerant_law
+    gwp = substance_of(facts.refrigerant).gwp if facts.refrigerant else None
+    if gwp is None:
+        return
+    for entry in market_dates(law):
+        if facts.system.duty not in entry["duties"] or gwp.value < parse(entry["gwp_from"], Kind.NUMBER):
+            continue
+        if not _in_size(facts, entry):
+            continue
+        day = entry["from"]
+        passed = facts.plant.visit is not None and facts.plant.visit.isoformat() >= day
+        yield Remark(
+            "warning" if passed else "note",
+            facts.path("refrigerant"),
+            f"{entry['title']}: from {day} no new equipment of this kind with {facts.system.refrigerant} may be placed "
+            "on the market.",
+            (
+                facts.plant.figure(f"GWP of {facts.system.refrigerant}", gwp.value, Kind.NUMBER, 0),
+                Figure("no longer from GWP", entry["gwp_from"]),
+            ),
+            "A plant that stands may go on; think of it before buying a second one. Confirm with the law in force.",
+            f"{entry['document']}; GWP: {gwp.source}",
+            entry["mark"],
+        )
+
+
+def market_dates(law: str) -> tuple[dict[str, Any], ...]:
+    """The entries of `market_dates.yaml` for a law as written in `plant.rules.refrigerant_law`."""
+    import yaml
+
+    text = (files("commission.review") / "market_dates.yaml").read_text(encoding="utf-8")
+    return tuple(entry for entry in yaml.load(text, Loader=yaml.BaseLoader) if entry["law"] == law)
+
+
+def _in_size(facts: SystemFacts, entry: dict[str, Any]) -> bool:
+    """Whether the rated capacity lies in the range of the entry; an unknown capacity lies in every range."""
+    capacity = rated_capacity(facts)
+    if capacity is None:
+        return True
+    above, up_to = entry.get("capacity_above"), entry.get("capacity_up_to")
+    if above is not None and capacity <= parse(above, Kind.POWER):
+        return False
+    return up_to is None or capacity <= parse(up_to, Kind.POWER)
+
+
+def rated_capacity(facts: SystemFacts) -> float | None:
+    """Largest capacity in W that the supplier states: of heat for heating duties, else of cooling; None if none is."""
+    key = "cooling_capacity" if facts.cools else "heating_capacity"
+    stated = [getattr(point, key) for point in facts.system.rated_points]
+    unit = facts.system.condensing_unit
+    if unit is not None and facts.cools:
+        stated += [row.cooling_capacity for row in unit.rated_points]
+    return max((value for value in stated if value is not None), default=None)

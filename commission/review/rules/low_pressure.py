@@ -1,0 +1,98 @@
+"""The settings of the low side against what is expected there."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from commission.quantities import Kind
+from commission.review.facts import SystemFacts, explained_figure
+from commission.review.finding import Remark
+
+
+def cut_out_over_suction(facts: SystemFacts) -> Iterator[Remark]:
+    """A low-pressure cut-out that the expected suction pressure reaches or nears.
+
+    Source: a machine stopped by its own cut-out at its design condition does not do its duty. Margin: threshold
+    `low_pressure_margin`. An error only where the expectation lies below the setting by twice its uncertainty.
+    """
+    setting = facts.system.controls.low_pressure_cut_out
+    if setting is None:
+        return
+    cut_out = facts.absolute(setting)
+    entry = facts.plant.threshold("low_pressure_margin")
+    for name in ("design", "coldest"):
+        expected = facts.expected(name, "suction_pressure")
+        if expected is None:
+            continue
+        margin = (expected.value - cut_out) / cut_out
+        if margin >= entry.value:
+            continue
+        sure = expected.value + 2 * (expected.uncertainty or 0.0) < cut_out
+        yield Remark(
+            "error" if sure and name == "design" else "warning",
+            facts.path("controls", "low_pressure_cut_out"),
+            f"{facts.title} is expected to {'stop' if margin <= 0 else 'come close to stopping'} on low pressure "
+            f"{facts.outlooks[name].name}.",
+            (
+                explained_figure(facts.plant, expected, "expected suction pressure"),
+                facts.plant.figure("low-pressure cut-out", cut_out, Kind.PRESSURE),
+                facts.plant.figure("margin, share of the absolute setting", margin, Kind.RATIO),
+            ),
+            "Set the cut-out below every suction pressure of ordinary running, but above the pressure at which the "
+            "suction line draws in air.",
+            entry.source,
+            entry.mark,
+        )
+        return
+
+
+def never_cuts_in(facts: SystemFacts) -> Iterator[Remark]:
+    """A cut-in that the low side does not reach when the room calls for cooling again.
+
+    Source: at standstill the low side of a pumped-down plant warms to the room and holds at most saturation there, once
+    the solenoid valve lets liquid in; a cut-in above it never closes.
+    """
+    setting, room = facts.system.controls.low_pressure_cut_in, facts.system.controls.room_temperature
+    if setting is None or room is None or facts.refrigerant is None or room >= facts.refrigerant.T_critical:
+        return
+    cut_in, reached = facts.absolute(setting), facts.refrigerant.dew(room).p
+    if cut_in < reached:
+        return
+    yield Remark(
+        "error",
+        facts.path("controls", "low_pressure_cut_in"),
+        f"{facts.title} cannot start again by itself: its low-pressure cut-in lies above saturation at the room's "
+        "temperature.",
+        (
+            facts.plant.figure("low-pressure cut-in", cut_in, Kind.PRESSURE),
+            facts.plant.figure("saturation at the room temperature", reached, Kind.PRESSURE),
+            facts.plant.figure("room temperature", room, Kind.TEMPERATURE),
+        ),
+        "Set the cut-in below saturation at the coldest room temperature.",
+    )
+
+
+def below_atmosphere(facts: SystemFacts) -> Iterator[Remark]:
+    """A suction pressure expected below the barometric pressure of the site.
+
+    Source: definition: a leak then draws in air and moisture instead of showing itself; with a flammable refrigerant
+    the mixture inside can burn.
+    """
+    barometric = facts.plant.loaded.barometric_pressure
+    for name in ("coldest", "design"):
+        expected = facts.expected(name, "suction_pressure")
+        if expected is None or expected.value >= barometric:
+            continue
+        yield Remark(
+            "warning",
+            facts.path(),
+            f"{facts.title} is expected to draw its suction below atmosphere {facts.outlooks[name].name}.",
+            (
+                explained_figure(facts.plant, expected, "expected suction pressure"),
+                facts.plant.figure("the same, absolute", expected.value, Kind.PRESSURE_DIFFERENCE),
+                facts.plant.figure("barometric pressure of the site", barometric, Kind.PRESSURE_DIFFERENCE),
+            ),
+            "Prove tightness under vacuum as well as under pressure, watch for air in the condenser, and set the "
+            "low-pressure cut-out with this in mind.",
+        )
+        return

@@ -1,0 +1,151 @@
+"""Rated points that contradict each other."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from itertools import combinations
+
+from commission.quantities import NOMENCLATURE, Kind
+from commission.review.facts import SystemFacts, conditions_of
+from commission.review.finding import Figure, Remark
+
+RESULTS = ("cooling_capacity", "heating_capacity", "power_input")
+OUTPUTS = ("cooling_capacity", "heating_capacity")
+COLD_KEYS = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "evaporating_temperature")
+WARM_KEYS = ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature", "condensing_temperature")
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """One row of a supplier's table: its condition, its results, and where it stands. All in SI."""
+
+    path: str
+    name: str
+    conditions: Mapping[str, float]
+    results: Mapping[str, float]
+
+
+def tables(facts: SystemFacts) -> Iterator[tuple[Row, ...]]:
+    """Each table that the supplier gives for this system."""
+    yield tuple(
+        Row(
+            facts.path("rated_points", index),
+            f"rated point {index + 1}",
+            conditions_of(point),
+            {key: value for key in RESULTS if (value := getattr(point, key)) is not None},
+        )
+        for index, point in facts.rated_points()
+    )
+    unit = facts.system.condensing_unit
+    yield tuple(
+        Row(
+            facts.path("condensing_unit", "rated_points", index),
+            f"row {index + 1} of the condensing unit's table",
+            {
+                "evaporating_temperature": row.evaporating_temperature,
+                "heat_sink_inlet_temperature": row.heat_sink_inlet_temperature,
+            },
+            {"cooling_capacity": row.cooling_capacity, "power_input": row.power_input},
+        )
+        for index, row in enumerate(unit.rated_points if unit else ())
+    )
+
+
+def same_condition_other_value(facts: SystemFacts) -> Iterator[Remark]:
+    """Two rows at one condition with different results.
+
+    Source: one machine has one capacity and one power at one condition.
+    """
+    for table in tables(facts):
+        for one, other in combinations(table, 2):
+            if not _same(facts, one.conditions, other.conditions):
+                continue
+            differing = [key for key in RESULTS if _differs(facts, one.results.get(key), other.results.get(key))]
+            if differing:
+                yield Remark(
+                    "error",
+                    other.path,
+                    f"{one.name.capitalize()} and {other.name} of {facts.title} differ at one condition.",
+                    tuple(
+                        facts.plant.quantity(key, row.results[key], f"{NOMENCLATURE[key].label}, {row.name}")
+                        for key in differing
+                        for row in (one, other)
+                    ),
+                    "Keep the row of the supplier's document, or write what makes them differ (speed, flow).",
+                )
+
+
+def _same(facts: SystemFacts, one: Mapping[str, float], other: Mapping[str, float]) -> bool:
+    near = facts.plant.limit("same_condition")
+    if one.keys() != other.keys() or not one:
+        return False
+    for key, value in one.items():
+        temperature = NOMENCLATURE[key].kind is Kind.TEMPERATURE
+        allowed = near if temperature else facts.plant.limit("same_value") * abs(value)
+        if abs(value - other[key]) > allowed:
+            return False
+    return True
+
+
+def _differs(facts: SystemFacts, one: float | None, other: float | None) -> bool:
+    if one is None or other is None:
+        return False
+    return abs(one - other) > facts.plant.limit("same_value") * max(abs(one), abs(other))
+
+
+def easier_lift_lower_cop(facts: SystemFacts) -> Iterator[Remark]:
+    """A row with a warmer source and a colder sink than another, yet a lower COP.
+
+    Source: second law and the shape of every displacement machine at one speed: less lift, more heat for the same
+    power. Head-pressure hold or other fan stages can break the order, hence a warning. Rows are compared only where
+    speed and flows are written alike.
+    """
+    for table in tables(facts):
+        for one, other in combinations(table, 2):
+            for easy, hard in ((one, other), (other, one)):
+                if not _easier(facts, easy.conditions, hard.conditions):
+                    continue
+                for key in OUTPUTS:
+                    figures = _cop_figures(facts, key, easy, hard)
+                    if figures:
+                        yield Remark(
+                            "warning",
+                            hard.path,
+                            f"{hard.name.capitalize()} of {facts.title} has the harder temperatures but the better COP "
+                            f"than {easy.name}.",
+                            figures,
+                            "Check both rows: columns exchanged, a power in another unit, or another speed.",
+                        )
+
+
+def _easier(facts: SystemFacts, easy: Mapping[str, float], hard: Mapping[str, float]) -> bool:
+    """Whether `easy` has nowhere a colder source or a warmer sink, and somewhere clearly the opposite."""
+    if easy.keys() != hard.keys():
+        return False
+    near = facts.plant.limit("same_condition")
+    gains = [easy[key] - hard[key] for key in COLD_KEYS if key in easy]
+    gains += [hard[key] - easy[key] for key in WARM_KEYS if key in easy]
+    others = {key: value for key, value in easy.items() if key not in COLD_KEYS + WARM_KEYS}
+    alike = all(abs(value - hard[key]) <= facts.plant.limit("same_value") * abs(value) for key, value in others.items())
+    return alike and bool(gains) and min(gains) >= -near and max(gains) > near
+
+
+def _cop_figures(facts: SystemFacts, key: str, easy: Row, hard: Row) -> tuple[Figure, ...]:
+    if key not in easy.results or key not in hard.results:
+        return ()
+    if not easy.results.get("power_input") or not hard.results.get("power_input"):
+        return ()
+    easy_cop = easy.results[key] / easy.results["power_input"]
+    hard_cop = hard.results[key] / hard.results["power_input"]
+    if hard_cop <= easy_cop * (1 + facts.plant.limit("same_value")):
+        return ()
+    cop = key.replace("_capacity", "_cop")
+    figures = [facts.plant.quantity(cop, hard_cop, f"COP of {hard.name}")]
+    figures.append(facts.plant.quantity(cop, easy_cop, f"COP of {easy.name}"))
+    for temperature in (*COLD_KEYS, *WARM_KEYS):
+        if temperature in easy.conditions:
+            label = NOMENCLATURE[temperature].label
+            figures.append(facts.plant.quantity(temperature, hard.conditions[temperature], f"{label}, {hard.name}"))
+            figures.append(facts.plant.quantity(temperature, easy.conditions[temperature], f"{label}, {easy.name}"))
+    return tuple(figures)

@@ -1,0 +1,161 @@
+"""The efficiencies that a description states, each with the highest that the second law allows between its media."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from commission.description.model import CondensingUnitPoint, Conditions, Medium
+from commission.errors import NotCalculatedError
+from commission.quantities import Explained, Input, Kind
+from commission.review.facts import SystemFacts
+
+
+@dataclass(frozen=True, slots=True)
+class StatedCop:
+    """A stated COP, cooling or heating, and the Carnot COP between the two streams; None where there is no limit."""
+
+    path: str
+    name: str
+    quantity: str
+    cop: float
+    source_mean: float
+    sink_mean: float
+    limit: Explained
+
+
+def entropic_mean(inlet: float, outlet: float) -> float:
+    """Entropic mean temperature in K of a stream of constant heat capacity: (T_in - T_out) / ln(T_in / T_out).
+
+    Source: dh/ds of the stream with dh = c dT and ds = c dT/T. Temperatures in K.
+    """
+    if math.isclose(inlet, outlet, abs_tol=1e-6):
+        return (inlet + outlet) / 2
+    return (inlet - outlet) / math.log(inlet / outlet)
+
+
+def stated_cops(facts: SystemFacts) -> Iterator[StatedCop]:
+    """Every COP that rated points, the condensing unit's table and guarantees state."""
+    for index, point in facts.rated_points():
+        for capacity, quantity in ((point.cooling_capacity, "cooling_cop"), (point.heating_capacity, "heating_cop")):
+            if capacity is not None and point.power_input:
+                heat = (point.cooling_capacity, point.heating_capacity)
+                yield from _between_media(
+                    facts,
+                    facts.path("rated_points", index),
+                    f"Rated point {index + 1}",
+                    quantity,
+                    capacity / point.power_input,
+                    point,
+                    heat,
+                )
+    unit = facts.system.condensing_unit
+    for index, row in enumerate(unit.rated_points if unit else ()):
+        yield from _of_condensing_unit(facts, index, row)
+    for index, guarantee in enumerate(facts.system.guarantee):
+        if guarantee.quantity in ("cooling_cop", "heating_cop"):
+            path = facts.path("guarantee", index)
+            name = f"Guarantee {index + 1}"
+            value = guarantee.value_si
+            yield from _between_media(facts, path, name, guarantee.quantity, value, guarantee.at, (None, None))
+
+
+def _between_media(
+    facts: SystemFacts,
+    path: str,
+    name: str,
+    quantity: str,
+    cop: float,
+    at: Conditions,
+    heat: tuple[float | None, float | None],
+) -> Iterator[StatedCop]:
+    cooling, heating = heat
+    source = stream_mean(facts, "source", at, cooling)
+    sink = stream_mean(facts, "sink", at, heating)
+    if source is not None and sink is not None and sink > source:
+        yield StatedCop(path, name, quantity, cop, source, sink, carnot(quantity, source, sink, path))
+
+
+def carnot(quantity: str, source: float, sink: float, origin: str) -> Explained:
+    """Highest COP between two mean temperatures in K: cooling T_so / (T_si - T_so), heating T_si / (T_si - T_so)."""
+    cooling = quantity == "cooling_cop"
+    inputs = (
+        Input("entropic mean temperature of the heat source", source, Kind.TEMPERATURE, origin),
+        Input("entropic mean temperature of the heat sink", sink, Kind.TEMPERATURE, origin),
+    )
+    value = (source if cooling else sink) / (sink - source)
+    return Explained("carnot_cop", value, None, "carnot_cooling" if cooling else "carnot_heating", inputs)
+
+
+def stream_mean(facts: SystemFacts, side: str, at: Conditions, heat: float | None) -> float | None:
+    """Entropic mean temperature in K of a medium, or a bound of it that no honest machine can be hurt by.
+
+    Both ends where they are written; an end that is missing follows from flow and heat where the medium is a liquid
+    (`heat` in W). A lone inlet is itself a bound: the source gets no warmer, the sink no colder than it. A lone outlet
+    of a liquid is moved by the largest usual change of temperature. None where nothing bounds it.
+    """
+    inlet = getattr(at, f"heat_{side}_inlet_temperature")
+    outlet = getattr(at, f"heat_{side}_outlet_temperature")
+    medium = facts.system.heat_source if side == "source" else facts.system.heat_sink
+    if inlet is not None and outlet is not None:
+        return entropic_mean(inlet, outlet)
+    if inlet is None and outlet is None:
+        return None
+    known = inlet if inlet is not None else outlet
+    flow = getattr(at, f"heat_{side}_flow") or medium.flow
+    change = _liquid_change(medium, flow, heat, known)
+    falls = side == "source"
+    if change is not None:
+        sign = -1.0 if (inlet is not None) == falls else 1.0
+        return entropic_mean(known, known + sign * change)
+    if inlet is not None:
+        return float(inlet)
+    if facts.system.duty == "water_heating" and side == "sink":
+        return None  # a store or a tap may start anywhere
+    return float(outlet) + (1 if falls else -1) * facts.plant.limit("medium_change_unknown")
+
+
+def _liquid_change(medium: Medium, flow: float | None, heat: float | None, temperature: float) -> float | None:
+    """Temperature change in K of a liquid stream, None for air or where flow or heat is not known."""
+    from commission.properties import liquid
+
+    if medium.medium == "air" or not flow or heat is None:
+        return None
+    stream = liquid(medium.medium, medium.mass_fraction or 0.0)
+    return heat / (flow * stream.density(temperature) * stream.specific_heat(temperature))
+
+
+def _of_condensing_unit(facts: SystemFacts, index: int, row: CondensingUnitPoint) -> Iterator[StatedCop]:
+    """A condensing unit by its refrigerant: mean temperature in the cooler against the air on the condenser."""
+    path = facts.path("condensing_unit", "rated_points", index)
+    name = f"Row {index + 1} of the condensing unit's table"
+    source = mean_refrigerant_temperature(facts, row)
+    sink = row.heat_sink_inlet_temperature
+    if sink > source:
+        cop = row.cooling_capacity / row.power_input
+        yield StatedCop(path, name, "cooling_cop", cop, source, sink, carnot("cooling_cop", source, sink, path))
+
+
+def mean_refrigerant_temperature(facts: SystemFacts, row: CondensingUnitPoint) -> float:
+    """(h_1 - h_4) / (s_1 - s_4) in K from valve to suction of a condensing unit's rating.
+
+    The liquid is taken at the temperature of the air on the condenser, the coldest it can be, which makes the bound
+    generous.
+
+    Raises:
+        NotCalculatedError: the refrigerant is not known or a state lies outside its range.
+    """
+    unit = facts.system.condensing_unit
+    fluid = facts.refrigerant
+    if unit is None or fluid is None:
+        raise NotCalculatedError(facts.reason or "the refrigerant is not known")
+    evaporating = fluid.dew(row.evaporating_temperature)
+    suction_temperature = unit.suction_temperature or row.evaporating_temperature + (unit.suction_superheat or 0.0)
+    suction = (
+        fluid.vapour(suction_temperature, evaporating.p)
+        if suction_temperature > row.evaporating_temperature
+        else evaporating
+    )
+    inlet = fluid.throttled(evaporating.p, fluid.bubble(row.heat_sink_inlet_temperature).h)
+    return float((suction.h - inlet.h) / (suction.s - inlet.s))
