@@ -20,12 +20,13 @@ def command(plant: Path, out: Path | None, serve: bool, strict: bool, no_cache: 
     from commission.manual import build
 
     folder = out or plant / "manual"
-    result = build(plant, folder, progress=say, cache=None if no_cache else _cache_folder())
+    cache = None if no_cache else _cache_folder()
+    result = build(plant, folder, progress=say, cache=cache)
     click.echo(str(result.first_page))
     if serve:
         from commission.cli.serve import serve_manual
 
-        serve_manual(plant, folder, say)
+        serve_manual(plant, cache, say)
     errors = sum(1 for finding in result.findings if finding.severity == "error")
     if strict and errors:
         say(f"review found {errors} error{'s' if errors > 1 else ''}; see the page Findings")

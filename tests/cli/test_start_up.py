@@ -1,0 +1,60 @@
+"""The command line starts light, explains itself, and turns every mistake into a message."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from tests.conftest import Run
+
+HEAVY = set("CoolProp matplotlib numpy scipy pydantic mkdocs yaml jinja2 nh3 pint platformdirs".split())
+VERBS = ("new", "review", "predict", "compare", "record", "build")
+
+
+def test_help_imports_click_and_nothing_heavy() -> None:
+    """`--help` may import click and this package, but none of the libraries that calculate, draw or read."""
+    code = (
+        "import sys\n"
+        "from commission.cli import main\n"
+        "try:\n    main(['--help'])\nexcept SystemExit:\n    pass\n"
+        "print('\\n'.join(sorted(sys.modules)), file=sys.stderr)\n"
+    )
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, encoding="utf-8", check=True)
+    loaded = {name.partition(".")[0] for name in done.stderr.splitlines()}
+    assert "click" in loaded
+    assert not loaded & HEAVY
+
+
+def test_importing_the_package_imports_nothing_heavy() -> None:
+    """`import commission` is free: rooms are imported when they are needed."""
+    code = "import sys, commission; print('\\n'.join(sys.modules))"
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, encoding="utf-8", check=True)
+    assert not {name.partition(".")[0] for name in done.stdout.splitlines()} & (HEAVY | {"click"})
+
+
+@pytest.mark.parametrize("verb", VERBS)
+def test_every_verb_explains_itself(commission: Run, verb: str) -> None:
+    """Each verb has a help text that names what it works on, and asking for help succeeds."""
+    done = commission(verb, "--help")
+    assert done.returncode == 0
+    assert done.stdout.startswith(f"Usage: commission {verb}")
+
+
+def test_a_misspelt_verb_is_answered_with_the_nearest(commission: Run) -> None:
+    """Wrong use leaves with 2 and says which verb was probably meant."""
+    done = commission("predct", "somewhere")
+    assert done.returncode == 2
+    assert "Did you mean predict?" in done.stderr
+    assert "Traceback" not in done.stderr
+
+
+@pytest.mark.parametrize("verb", ["review", "predict", "build"])
+def test_a_missing_plant_is_an_error_with_its_path(commission: Run, tmp_path: Path, verb: str) -> None:
+    """A folder that is not there is named, with exit code 2."""
+    done = commission(verb, tmp_path / "nowhere")
+    assert done.returncode == 2
+    assert "nowhere" in done.stderr
+    assert "Traceback" not in done.stderr
