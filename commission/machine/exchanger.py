@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from commission.errors import NotCalculatedError
+from commission.machine.streams import Stream
 
 Flow = Literal["counterflow", "parallel", "crossflow unmixed"]
 
@@ -75,6 +76,12 @@ class Exchanger:
             return self.conductance
         return self.conductance * float((volume_flow / self.rated_flow) ** self.flow_exponent)
 
-    def heat_per_kelvin(self, volume_flow: float, capacity_rate: float) -> float:
-        """Heat in W for each kelvin between medium inlet and refrigerant, at this flow and capacity rate."""
-        return capacity_rate * effectiveness(self.conductance_at(volume_flow) / capacity_rate)
+    def heat_per_kelvin(self, stream: Stream, flow_share: float = 1.0, surface_share: float = 1.0) -> float:
+        """Heat in W for each kelvin between the known temperature of the medium and the refrigerant.
+
+        The shares scale flow and surface. With the outlet known, C e (T_in - T_r) = C e/(1 - e) (T_out - T_r).
+        """
+        rate = flow_share * stream.capacity_rate
+        conductance = surface_share * self.conductance_at(flow_share * stream.volume_flow)
+        share = effectiveness(conductance / rate)
+        return rate * math.expm1(conductance / rate) if stream.by_outlet else rate * share

@@ -10,7 +10,7 @@ import math
 from dataclasses import dataclass
 from typing import Literal
 
-from commission.machine.exchanger import Exchanger, effectiveness
+from commission.machine.exchanger import Exchanger
 from commission.machine.streams import Stream
 
 By = Literal["fan speed", "fan cycling", "condenser flooding", "water valve"]
@@ -33,13 +33,12 @@ class HeadPressure:
 def heat_per_kelvin(by: By | None, share: float, condenser: Exchanger, sink: Stream) -> float:
     """Heat to the sink in W for each kelvin of inlet difference at `share` of full."""
     if by is None or share == 1.0:
-        return condenser.heat_per_kelvin(sink.volume_flow, sink.capacity_rate)
+        return condenser.heat_per_kelvin(sink)
     if by == "fan cycling":
-        return share * condenser.heat_per_kelvin(sink.volume_flow, sink.capacity_rate)
+        return share * condenser.heat_per_kelvin(sink)
     if by == "condenser flooding":
-        conductance = share * condenser.conductance_at(sink.volume_flow)
-        return sink.capacity_rate * effectiveness(conductance / sink.capacity_rate)
-    return condenser.heat_per_kelvin(share * sink.volume_flow, share * sink.capacity_rate)
+        return condenser.heat_per_kelvin(sink, surface_share=share)
+    return condenser.heat_per_kelvin(sink, flow_share=share)
 
 
 def share_for(by: By, wanted: float, condenser: Exchanger, sink: Stream, least: float) -> float | None:

@@ -12,7 +12,8 @@ from commission.machine.streams import Stream
 class StatePoint:
     """One state of the refrigerant on its way round, for tables and the log p-h diagram.
 
-    `label` is short, `name` says where; `p` in Pa absolute, `h` in J/kg (zero as in the property source), `T` in K, `s` in J/(kg K).
+    `label` is short, `name` says where; `p` in Pa absolute, `h` in J/kg and `s` in J/(kg K)
+    (zero as in the property source), `T` in K.
     """
 
     label: str
@@ -59,6 +60,9 @@ class OperatingPoint:
     heat_from_source: float
     heat_to_sink: float
     line_gain: float
+    source_inlet_temperature: float
+    sink_inlet_temperature: float
+    sink_outlet_temperature: float
     share: float
     sink_fan_share: float
     sink_flow_share: float

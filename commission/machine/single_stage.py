@@ -40,7 +40,7 @@ class SuctionLine:
 
 @dataclass(frozen=True, slots=True)
 class SingleStage:
-    """All parameters of the machine; temperatures differences in K. Faults are other values of these parameters."""
+    """All parameters of the machine; temperature differences in K. Faults are other values of these parameters."""
 
     refrigerant: Refrigerant
     compressor: Compressor
@@ -156,15 +156,15 @@ class _Circuit:
 
     def _source_gap(self, evaporating: float, condensing: float, taken: float) -> float:
         source, exchanger = self.media.source, self.machine.evaporator
-        per_kelvin = exchanger.heat_per_kelvin(source.volume_flow, source.capacity_rate)
-        given = per_kelvin * (source.inlet_temperature - self.source_drive(evaporating, condensing))
+        per_kelvin = exchanger.heat_per_kelvin(source)
+        given = per_kelvin * (source.temperature - self.source_drive(evaporating, condensing))
         return (given - taken) / (per_kelvin * 10.0)
 
     def _sink_gap(self, condensing: float, given: float, share: float) -> float:
         m, sink = self.machine, self.media.sink
         by = m.head_pressure.by if m.head_pressure else None
         per_kelvin = heat_per_kelvin(by, share, m.condenser, sink)
-        taken = per_kelvin * (self.sink_drive(condensing) - sink.inlet_temperature)
+        taken = per_kelvin * (self.sink_drive(condensing) - sink.temperature)
         return (taken - given) / (per_kelvin * 10.0)
 
     def free(self, share: float, regime: str, start: OperatingPoint | None) -> OperatingPoint:
@@ -190,7 +190,7 @@ class _Circuit:
         guess = start.unknowns if near and start is not None else self._guess()[:1]
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
         given = self.cycle(solution.x[0], condensing)[2]
-        difference = self.sink_drive(condensing) - self.media.sink.inlet_temperature
+        difference = self.sink_drive(condensing) - self.media.sink.temperature
         if difference <= 0:
             return None
         share = share_for(control.by, given / difference, self.machine.condenser, self.media.sink, control.least_share)
@@ -212,7 +212,7 @@ class _Circuit:
         return self._point(evaporating, solution.x[0], 1.0, FREE, solution)
 
     def _guess(self) -> tuple[float, float]:
-        source, sink = self.media.source.inlet_temperature, self.media.sink.inlet_temperature
+        source, sink = self.media.source.temperature, self.media.sink.temperature
         evaporating = source - 8.0
         highest = 0.94 * self.machine.refrigerant.T_critical
         return evaporating, min(max(sink + 10.0, evaporating + 15.0), highest)
@@ -236,7 +236,8 @@ class _Circuit:
             StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
             StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
         )
-        control = m.head_pressure
+        control, flow = m.head_pressure, flow_share(m.head_pressure, share)
+        through = replace(self.media.sink, capacity_rate=flow * self.media.sink.capacity_rate)
         return OperatingPoint(
             regime=regime,
             evaporating_temperature=evaporating,
@@ -254,9 +255,12 @@ class _Circuit:
             heat_from_source=source,
             heat_to_sink=sink,
             line_gain=compression.flow * (suction.h - outlet.h),
+            source_inlet_temperature=self.media.source.inlet(-source),
+            sink_inlet_temperature=through.inlet(sink),
+            sink_outlet_temperature=through.outlet(sink),
             share=share,
             sink_fan_share=fan_share(control, share),
-            sink_flow_share=flow_share(control, share),
+            sink_flow_share=flow,
             states=states,
             warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
             evaluations=solution.evaluations,

@@ -13,15 +13,25 @@ from commission.properties import Liquid, MoistAir, moist_air
 class Stream:
     """One medium on its way through an exchanger.
 
-    `inlet_temperature` in K, `volume_flow` in m3/s at the inlet state, `mass_flow` in kg/s (dry air for air),
-    `capacity_rate` in W/K. `air` is the moist-air state at the inlet, None for a liquid.
+    `temperature` in K is known at the inlet, or at the outlet with `by_outlet` (as water heating is rated);
+    `volume_flow` in m3/s at that state, `mass_flow` in kg/s (dry air for air), `capacity_rate` in W/K. `air` is the
+    moist-air state at the inlet, None for a liquid.
     """
 
-    inlet_temperature: float
+    temperature: float
     volume_flow: float
     mass_flow: float
     capacity_rate: float
     air: MoistAir | None = None
+    by_outlet: bool = False
+
+    def inlet(self, taken: float) -> float:
+        """Inlet temperature in K where the medium takes up `taken` W (negative: gives)."""
+        return self.temperature - taken / self.capacity_rate if self.by_outlet else self.temperature
+
+    def outlet(self, taken: float) -> float:
+        """Outlet temperature in K where the medium takes up `taken` W of sensible heat (negative: gives)."""
+        return self.temperature if self.by_outlet else self.temperature + taken / self.capacity_rate
 
 
 def air_stream(temperature: float, volume_flow: float, relative_humidity: float, pressure: float) -> Stream:
@@ -36,15 +46,15 @@ def air_stream(temperature: float, volume_flow: float, relative_humidity: float,
     return Stream(temperature, volume_flow, mass_flow, mass_flow * air.cp, air)
 
 
-def liquid_stream(temperature: float, volume_flow: float, liquid: Liquid) -> Stream:
-    """Water or brine at `temperature` (K); density and specific heat are taken at the inlet.
+def liquid_stream(temperature: float, volume_flow: float, liquid: Liquid, by_outlet: bool = False) -> Stream:
+    """Water or brine at `temperature` (K), where density and specific heat are taken, at its inlet or outlet.
 
     Raises:
         NotCalculatedError: the flow is not positive.
     """
     _positive(volume_flow)
     mass_flow = volume_flow * liquid.density(temperature)
-    return Stream(temperature, volume_flow, mass_flow, mass_flow * liquid.specific_heat(temperature))
+    return Stream(temperature, volume_flow, mass_flow, mass_flow * liquid.specific_heat(temperature), None, by_outlet)
 
 
 def _positive(volume_flow: float) -> None:

@@ -33,7 +33,7 @@ def leaving_air(stream: Stream, heat: float, refrigerant_temperature: float) -> 
     assert stream.air is not None
     air = stream.air
     per_air = heat / stream.mass_flow
-    dry = stream.inlet_temperature - heat / stream.capacity_rate
+    dry = stream.temperature - heat / stream.capacity_rate
     surface = 0.5 * (refrigerant_temperature + dry)
     if surface >= air.dew_point:
         return LeavingAir(dry, air.W, 1.0, 0.0)

@@ -83,16 +83,15 @@ class Plan:
     power_factor: float
 
 
-def shape_of(facts: Facts, a: Mapping[str, float]) -> EfficiencyShape:
+def shape_of(a: Mapping[str, float]) -> EfficiencyShape:
     """The run of the efficiencies over pressure ratio for the type of compressor."""
-    ratio = a["compressor_volume_ratio"] if "compressor_volume_ratio" in a else None
     return EfficiencyShape(
         clearance=a["compressor_clearance"],
         expansion_exponent=1.1,
         leakage=a["compressor_leakage"],
         loss_suction=a["compressor_suction_loss"],
         loss_discharge=a["compressor_discharge_loss"],
-        built_in_volume_ratio=ratio,
+        built_in_volume_ratio=a.get("compressor_volume_ratio"),
     )
 
 
@@ -104,10 +103,23 @@ def humidity(facts: Facts, a: Mapping[str, float]) -> float:
     return stated if stated is not None else a["source_humidity"]
 
 
-def stream(temperature: float, flow: float, medium: Liquid | None, relative_humidity: float, pressure: float) -> Stream:
-    """Medium of one side entering its exchanger."""
+def stream(
+    temperature: float,
+    flow: float,
+    medium: Liquid | None,
+    relative_humidity: float,
+    pressure: float,
+    by_outlet: bool = False,
+) -> Stream:
+    """Medium of one side at its exchanger.
+
+    Raises:
+        NotCalculatedError: air is known by its outlet, which its humidity there would have to go with.
+    """
     if medium is not None:
-        return liquid_stream(temperature, flow, medium)
+        return liquid_stream(temperature, flow, medium, by_outlet)
+    if by_outlet:
+        raise NotCalculatedError("a condition of air is its inlet temperature; the outlet follows")
     return air_stream(temperature, flow, relative_humidity, pressure)
 
 
@@ -173,7 +185,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         displacement=displacement or levels.swept_flow,
         volumetric_level=levels.swept_flow / displacement if displacement else 1.0,
         isentropic_level=levels.isentropic,
-        shape=shape_of(facts, a),
+        shape=shape_of(a),
         shell_loss=a["shell_heat_loss_share"],
     )
     exponent = a["air_side_exponent"]
@@ -229,22 +241,18 @@ def suction_line(
 def media(facts: Facts, plan: Plan, conditions: Mapping[str, float]) -> Media:
     """The media at a condition (keys of the nomenclature, SI)."""
     wet = conditions.get("heat_source_relative_humidity", plan.source_humidity)
-    source = stream(
-        conditions["heat_source_inlet_temperature"],
-        conditions.get("heat_source_flow", plan.rated.source_flow),
-        facts.source_liquid,
-        wet,
-        facts.pressure,
-    )
-    sink = stream(
-        conditions["heat_sink_inlet_temperature"],
-        conditions.get("heat_sink_flow", plan.rated.sink_flow),
-        facts.sink_liquid,
-        SINK_HUMIDITY,
-        facts.pressure,
-    )
-    around = sink.inlet_temperature if plan.surroundings is None else plan.surroundings
+    source = _side(conditions, "heat_source", plan.rated.source_flow, facts.source_liquid, wet, facts.pressure)
+    sink = _side(conditions, "heat_sink", plan.rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    around = sink.temperature if plan.surroundings is None else plan.surroundings
     return Media(source, sink, around)
+
+
+def _side(
+    conditions: Mapping[str, float], side: str, flow: float, medium: Liquid | None, wet: float, pressure: float
+) -> Stream:
+    by_outlet = f"{side}_inlet_temperature" not in conditions
+    temperature = conditions[f"{side}_{'outlet' if by_outlet else 'inlet'}_temperature"]
+    return stream(temperature, conditions.get(f"{side}_flow", flow), medium, wet, pressure, by_outlet)
 
 
 def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: float) -> float | None:

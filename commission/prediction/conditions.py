@@ -26,10 +26,12 @@ class ConditionAxis:
 
 
 def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]:
-    """The quantities that set the condition of this system, in the order in which a person would ask for them."""
+    """The quantities that set the condition of this system, in the order in which a person would ask for them.
+
+    A side that is rated by its outlet (water heating: flow temperature) has its outlet as condition.
+    """
     rated = plan.rated
-    source, sink = _design(facts, plan)
-    axes = [_temperature_axis(facts, "heat_source", source), _temperature_axis(facts, "heat_sink", sink)]
+    axes = [_temperature_axis(facts, side, *_design(facts, plan, case, side)) for side in ("heat_source", "heat_sink")]
     if facts.source_liquid is None:
         wet = plan.source_humidity
         axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
@@ -38,23 +40,26 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     return {axis.key: axis for axis in axes}
 
 
-def _design(facts: Facts, plan: Plan) -> tuple[float, float]:
+def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float]:
+    """Key and rated value of one medium's temperature: of the design where it is stated, else of the rated point."""
+    inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
     design = facts.system.design
-    source, sink = plan.rated.source_temperature, plan.rated.sink_temperature
-    if design is not None:
-        source = design.heat_source_inlet_temperature or source
-        sink = design.heat_sink_inlet_temperature or sink
-    return source, sink
+    for key in (inlet, outlet):
+        stated = getattr(design, key) if design is not None else None
+        if stated is not None and (key == inlet or outlet in case.conditions):
+            return key, stated
+    if inlet not in case.conditions and outlet in case.conditions:
+        return outlet, case.conditions[outlet]
+    return inlet, plan.rated.source_temperature if side == "heat_source" else plan.rated.sink_temperature
 
 
-def _temperature_axis(facts: Facts, side: str, rated: float) -> ConditionAxis:
+def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> ConditionAxis:
     """Outdoor air spans the weather of the site and 5 K more; rooms and liquids span what a visit may meet."""
     system = facts.system
     medium = system.heat_source if side == "heat_source" else system.heat_sink
     space = facts.loaded.plant.spaces.get(medium.space or "")
     heating = system.duty in ("space_heating", "water_heating")
     outdoors = medium.medium == "air" and (space.outdoors if space is not None else (side == "heat_source") == heating)
-    key = f"{side}_inlet_temperature"
     if outdoors:
         climate = facts.loaded.plant.plant.climate
         low = (climate.winter_dry_bulb if climate.winter_dry_bulb is not None else KELVIN - 10.0) - 5.0
@@ -75,8 +80,9 @@ def complete(
     """
     given = dict(given or {})
     problems = []
+    known = {**axes, **{_other_end(key): axis for key, axis in axes.items() if _other_end(key) != key}}
     for key, value in given.items():
-        if key not in axes:
+        if key not in known:
             problems.append(
                 Problem(
                     "this is no condition of this system",
@@ -89,11 +95,22 @@ def complete(
             problems.append(Problem("a condition must be a finite number", value=str(value), path=key))
     if problems:
         raise InputError(*problems)
-    whole = {key: given.get(key, axis.rated) for key, axis in axes.items()}
-    filled = tuple(key for key in axes if key not in given)
+    whole: dict[str, float] = {}
+    for key, axis in axes.items():
+        used = key if key in given or _other_end(key) not in given else _other_end(key)
+        whole[used] = given.get(used, axis.rated)
+    filled = tuple(key for key in whole if key not in given)
     outside = tuple(
         f"{NOMENCLATURE[key].label} lies outside the range for which this system is described"
         for key, axis in axes.items()
-        if not axis.low - 1e-9 <= whole[key] <= axis.high + 1e-9
+        if key in whole and not axis.low - 1e-9 <= whole[key] <= axis.high + 1e-9
     )
     return whole, filled, outside
+
+
+def _other_end(key: str) -> str:
+    """The outlet temperature for an inlet temperature and the other way round; other keys as they are."""
+    for one, other in (("_inlet_temperature", "_outlet_temperature"), ("_outlet_temperature", "_inlet_temperature")):
+        if key.endswith(one):
+            return key.removesuffix(one) + other
+    return key

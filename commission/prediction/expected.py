@@ -23,7 +23,6 @@ class Found:
 
 def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoint) -> Found:
     """All quantities at one operating point."""
-    source, sink = media.source, media.sink
     power = point.compression.power + plan.fans.counted(point.sink_fan_share)
     fan = plan.fans.source if facts.source_liquid is None else 0.0
     values = {
@@ -37,8 +36,8 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "superheat": point.superheat,
         "compressor_superheat": point.compressor_superheat,
         "subcooling": point.subcooling,
-        "evaporator_temperature_difference": source.inlet_temperature - point.evaporating_temperature,
-        "condenser_temperature_difference": point.condensing_temperature - sink.inlet_temperature,
+        "evaporator_temperature_difference": point.source_inlet_temperature - point.evaporating_temperature,
+        "condenser_temperature_difference": point.condensing_temperature - point.sink_inlet_temperature,
         "pressure_ratio": point.compression.pressure_ratio,
         "refrigerant_flow": point.compression.flow,
         "cooling_capacity": point.heat_from_source,
@@ -52,7 +51,7 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     }
     found = Found(values, {})
     _add(found, "current", lambda: _current(facts, plan, power))
-    _media(facts, plan, media, point, found)
+    _media(media, point, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
@@ -73,29 +72,31 @@ def _current(facts: Facts, plan: Plan, power: float) -> float:
     return power / (lines * plate.voltage * plan.power_factor)
 
 
-def _media(facts: Facts, plan: Plan, media: Media, point: OperatingPoint, found: Found) -> None:
-    source, sink = media.source, media.sink
-    sink_out = sink.inlet_temperature + point.heat_to_sink / (point.sink_flow_share * sink.capacity_rate)
+def _media(media: Media, point: OperatingPoint, found: Found) -> None:
+    source = media.source
+    source_in, sink_in, sink_out = (
+        point.source_inlet_temperature,
+        point.sink_inlet_temperature,
+        point.sink_outlet_temperature,
+    )
     if source.air is not None:
         source_out = leaving_air(source, point.heat_from_source, point.evaporating_temperature).temperature
     else:
-        source_out = source.inlet_temperature - point.heat_from_source / source.capacity_rate
+        source_out = source.outlet(-point.heat_from_source)
+    found.values["heat_source_inlet_temperature"] = source_in
+    found.values["heat_sink_inlet_temperature"] = sink_in
     found.values["heat_sink_outlet_temperature"] = sink_out
-    found.values["heat_sink_temperature_change"] = sink_out - sink.inlet_temperature
+    found.values["heat_sink_temperature_change"] = sink_out - sink_in
     found.values["heat_source_outlet_temperature"] = source_out
-    found.values["heat_source_temperature_change"] = source.inlet_temperature - source_out
+    found.values["heat_source_temperature_change"] = source_in - source_out
+    for key in ("heat_source", "heat_sink"):
+        known = "outlet" if (media.source if key == "heat_source" else media.sink).by_outlet else "inlet"
+        del found.values[f"{key}_{known}_temperature"]
     _add(
         found,
         "carnot_cop",
-        lambda: carnot_cooling(
-            entropic_mean(source.inlet_temperature, source_out), entropic_mean(sink.inlet_temperature, sink_out)
-        ),
+        lambda: carnot_cooling(entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out)),
     )
-
-
-LAWS: Mapping[str, str] = {
-    "carnot": "the COP of the compressor alone is above Carnot between the media",
-}
 
 
 def beats_carnot(values: Mapping[str, float]) -> bool:

@@ -36,6 +36,8 @@ METHOD: Mapping[str, str] = {
     "cooling_cop": "cop",
     "heating_cop": "cop",
     "carnot_cop": "carnot_cooling",
+    "heat_source_inlet_temperature": "medium_outlet",
+    "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
     "heat_sink_outlet_temperature": "medium_outlet",
     "heat_source_temperature_change": "medium_outlet",

@@ -20,8 +20,9 @@ class Used(Mapping[str, float]):
         self.keys_used: set[str] = set()
 
     def __getitem__(self, key: str) -> float:
+        value = self._values[key]
         self.keys_used.add(key)
-        return self._values[key]
+        return value
 
     def __iter__(self) -> Iterator[str]:
         return iter(self._values)

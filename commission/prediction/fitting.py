@@ -114,7 +114,7 @@ def _prepare(facts: Facts, a: Mapping[str, float]) -> tuple[_Problem, Levels]:
     rated = rated_of(facts, a, case)
     evaporator = _evaporator(facts, a, rated, case)
     condenser = condenser_conductance(facts, rated.sink_flow)
-    cases[middle] = with_data(case, tuple(_missing(facts, cases, case, evaporator is None, condenser is None)))
+    cases[middle] = with_data(case, tuple(_missing(facts, cases, evaporator is None, condenser is None)))
     problem = _Problem(facts, tuple(cases), middle, evaporator is not None, condenser is not None, ())
     return problem, _start(problem, a, rated)
 
@@ -129,7 +129,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     return conductance_for(rated.source_heat, a["source_minus_evaporating"], medium.capacity_rate)
 
 
-def _missing(facts: Facts, cases: Sequence[Case], case: Case, evaporator: bool, condenser: bool) -> list[Datum]:
+def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool) -> list[Datum]:
     """Assumptions that stand in for data that nobody states, at the reference case."""
     stated = {d.of for c in cases for d in c.data}
     extra = []
@@ -167,14 +167,14 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     elif "evaporating_temperature" in given:
         evaporating = given["evaporating_temperature"]
     else:
-        evaporating = case.source_temperature - given.get("source_minus_evaporating", a["source_minus_evaporating"])
+        evaporating = rated.source_temperature - given.get("source_minus_evaporating", a["source_minus_evaporating"])
     condensing = given.get("condensing_temperature")
     if condensing is None:
-        condensing = case.sink_temperature + given.get("condensing_minus_sink_inlet", a["condensing_minus_sink_inlet"])
+        condensing = rated.sink_temperature + given.get("condensing_minus_sink_inlet", a["condensing_minus_sink_inlet"])
     unit = Levels(1.0, 1.0, 1.0, 1.0)
     plan = build(facts, a, unit, rated)
     conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
-    compression, source, sink = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
+    compression, source, _ = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
     swept = rated.source_heat / source
     power = given.get("power_input")
     counted = plan.fans.counted(1.0) if power is not None else 0.0
@@ -194,14 +194,14 @@ def _conductances(
     facts, case = problem.facts, problem.cases[problem.reference]
     condenser = condenser_conductance(facts, rated.sink_flow)
     if condenser is None:
-        medium = stream(case.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
-        condenser = conductance_for(heat, condensing - case.sink_temperature, medium.capacity_rate)
+        medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+        condenser = conductance_for(heat, condensing - rated.sink_temperature, medium.capacity_rate)
     evaporator = _evaporator(facts, a, rated, case)
     if evaporator is None:
         medium = stream(
-            case.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
+            rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
         )
-        evaporator = conductance_for(rated.source_heat, case.source_temperature - evaporating, medium.capacity_rate)
+        evaporator = conductance_for(rated.source_heat, rated.source_temperature - evaporating, medium.capacity_rate)
     return condenser, evaporator
 
 
@@ -211,7 +211,8 @@ def _plan(problem: _Problem, a: Mapping[str, float], levels: Levels) -> Plan:
     rated = rated_of(facts, a, case)
     evaporator = _evaporator(facts, a, rated, case) if problem.fixed_evaporator else levels.evaporator
     condenser = condenser_conductance(facts, rated.sink_flow) if problem.fixed_condenser else levels.condenser
-    assert evaporator is not None and condenser is not None
+    assert evaporator is not None
+    assert condenser is not None
     return build(facts, a, replace(levels, evaporator=evaporator, condenser=condenser), rated)
 
 

@@ -118,10 +118,10 @@ class SystemModel:
         Raises:
             InputError, NotCalculatedError: as `predict`.
         """
-        whole, _, _ = complete(self.condition_axes, conditions)
+        whole, filled, _ = complete(self.condition_axes, conditions)
         nominal, start = self._values(self.fit.plan, whole, None)
         effects: dict[str, dict[str, float]] = {}
-        for cause, change, _ in self._changes(whole, nominal, start, _Starts()):
+        for cause, change, _ in self._changes(whole, filled, nominal, start, _Starts()):
             if cause != SCATTER:
                 effects[cause] = change
         return effects
@@ -134,13 +134,12 @@ class SystemModel:
         return expected_values(self.facts, plan, around, point), point
 
     def _changes(
-        self, whole: Mapping[str, float], nominal: Found, start: OperatingPoint, starts: _Starts
+        self, whole: Mapping[str, float], filled: Sequence[str], nominal: Found, start: OperatingPoint, starts: _Starts
     ) -> list[tuple[str, dict[str, float], OperatingPoint]]:
+        """Change of every value by each cause. What was filled in, and not measured, follows each variant's own."""
         changes = []
         for n, variant in enumerate(self.fit.variants):
-            asked = {**whole}
-            if variant.cause == "source_humidity":
-                asked.pop("heat_source_relative_humidity", None)
+            asked = {k: v for k, v in whole.items() if k not in filled or k.endswith("_temperature")}
             found, point = self._values(variant.plan, asked, starts.variants.get(n, start))
             starts.variants[n] = point
             change = {k: variant.sign * (found.values[k] - v) for k, v in nominal.values.items() if k in found.values}
@@ -153,7 +152,7 @@ class SystemModel:
         starts.nominal = point
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
         directions = 0
-        for cause, change, _ in self._changes(whole, nominal, point, starts):
+        for cause, change, _ in self._changes(whole, filled, nominal, point, starts):
             name = cause
             if cause == SCATTER:
                 directions += 1

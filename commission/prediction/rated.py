@@ -15,6 +15,7 @@ from commission.prediction.building import (
     flow_for,
     humidity,
     media,
+    stream,
 )
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
 
@@ -39,7 +40,10 @@ class Datum:
 
 @dataclass(frozen=True, slots=True)
 class Case:
-    """One rated point: condition and data. `unit` holds where the condensing unit is rated apart from its cooler."""
+    """One rated point: condition and data. `unit` holds where the condensing unit is rated apart from its cooler.
+
+    `source_temperature` and `sink_temperature` (K) are those of the rating, at inlet or outlet as `conditions` say.
+    """
 
     source_temperature: float
     sink_temperature: float
@@ -144,7 +148,7 @@ def reference(cases: tuple[Case, ...]) -> int:
 
 
 def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
-    """Heat and flows at the reference point; flows that nobody states follow from an assumed temperature change."""
+    """Heat, inlet temperatures and flows at the reference point; flows that nobody states follow from an assumed temperature change."""
     given = {d.of: d.value for d in case.data if d.assumption is None}
     power = given.get("power_input", 0.0)
     if "cooling_capacity" in given:
@@ -172,6 +176,12 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
     if sink_flow is None:
         change = a["sink_temperature_change"]
         sink_flow = flow_for(heating, change, sink_temperature, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    if "heat_source_outlet_temperature" in case.conditions and "heat_source_inlet_temperature" not in case.conditions:
+        unit = stream(source_temperature, source_flow, facts.source_liquid, wet, facts.pressure)
+        source_temperature += cooling / unit.capacity_rate
+    if "heat_sink_outlet_temperature" in case.conditions and "heat_sink_inlet_temperature" not in case.conditions:
+        unit = stream(sink_temperature, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+        sink_temperature -= heating / unit.capacity_rate
     return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow)
 
 
@@ -224,9 +234,9 @@ def observed(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, floa
     if of == "condensing_temperature":
         return point.condensing_temperature
     if of == "source_minus_evaporating":
-        return case.source_temperature - point.evaporating_temperature
+        return point.source_inlet_temperature - point.evaporating_temperature
     if of == "condensing_minus_sink_inlet":
-        return point.condensing_temperature - case.sink_temperature
+        return point.condensing_temperature - point.sink_inlet_temperature
     if of == "isentropic_efficiency":
         return point.compression.isentropic_efficiency
     if of == "volumetric_efficiency":
