@@ -38,9 +38,9 @@ def _quiet_standard_output() -> Iterator[None]:
 
 @cache
 def _module() -> Any:
-    import CoolProp.CoolProp as module
+    from CoolProp import CoolProp
 
-    return module
+    return CoolProp
 
 
 def load(light: bool = False) -> Any:

@@ -1,7 +1,7 @@
 """The equation of state behind one refrigerant: calls at (density, temperature) and Newton iterations on them.
 
-Density and temperature are the natural variables of a Helmholtz equation, so such a call needs no iteration, cannot fail,
-and gives all first derivatives for a few microseconds more (Span, Multiparameter Equations of State, 2000, chapter 3).
+Density and temperature are the natural variables of a Helmholtz equation, so such a call needs no iteration, cannot
+fail, and gives all first derivatives for a few microseconds more (Span, Multiparameter Equations of State, 2000, chapter 3).
 """
 
 from __future__ import annotations
@@ -17,11 +17,12 @@ from commission.properties.lines import FluidData
 
 SMALL_STEP = 1e-6  # a Newton step this small is closed by the first-order correction: the rest is 1e-12
 MAX_STEPS = 50
+GAS_CONSTANT = 8.314462618  # J/(mol K), CODATA 2018
 
 
 @dataclass(slots=True)
 class Point:
-    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K)."""
+    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K); `_t` is by temperature."""
 
     rho: float
     T: float
@@ -29,33 +30,33 @@ class Point:
     h: float
     s: float
     p_rho: float
-    p_T: float
+    p_t: float
     cv: float
 
     @property
     def h_rho(self) -> float:
         """dh/drho at constant temperature."""
-        return (self.p_rho - self.T * self.p_T / self.rho) / self.rho
+        return (self.p_rho - self.T * self.p_t / self.rho) / self.rho
 
     @property
-    def h_T(self) -> float:
+    def h_t(self) -> float:
         """dh/dT at constant density."""
-        return self.cv + self.p_T / self.rho
+        return self.cv + self.p_t / self.rho
 
     @property
     def s_rho(self) -> float:
         """ds/drho at constant temperature (a Maxwell relation)."""
-        return -self.p_T / self.rho**2
+        return -self.p_t / self.rho**2
 
     @property
-    def s_T(self) -> float:
+    def s_t(self) -> float:
         """ds/dT at constant density."""
         return self.cv / self.T
 
     @property
     def cp(self) -> float:
         """Specific heat at constant pressure."""
-        return self.cv + self.T * self.p_T**2 / (self.rho**2 * self.p_rho)
+        return self.cv + self.T * self.p_t**2 / (self.rho**2 * self.p_rho)
 
 
 class _PerThread(threading.local):
@@ -131,11 +132,11 @@ class Equation:
             if not point.p_rho > 0 or not point.cv > 0:
                 break
             if entropy:
-                miss, by_rho, by_T = value - point.s, point.s_rho, point.s_T
+                miss, by_rho, by_T = value - point.s, point.s_rho, point.s_t
             else:
-                miss, by_rho, by_T = value - point.h, point.h_rho, point.h_T
-            determinant = point.p_rho * by_T - point.p_T * by_rho
-            d_rho = ((p - point.p) * by_T - point.p_T * miss) / determinant
+                miss, by_rho, by_T = value - point.h, point.h_rho, point.h_t
+            determinant = point.p_rho * by_T - point.p_t * by_rho
+            d_rho = ((p - point.p) * by_T - point.p_t * miss) / determinant
             d_T = (point.p_rho * miss - (p - point.p) * by_rho) / determinant
             if abs(d_rho) < SMALL_STEP * rho and abs(d_T) < SMALL_STEP * T:
                 return _corrected(point, d_rho, d_T)
@@ -153,7 +154,8 @@ class Equation:
             PropertyRangeError: `p` is not reached at any density known.
         """
         low, high = 0.0, largest
-        rho = min(p * self.data.molar_mass / (8.314462618 * T), 0.5 * largest) if T > self.data.T_critical else largest
+        ideal = p * self.data.molar_mass / (GAS_CONSTANT * T)
+        rho = largest if self.data.T_critical >= T else min(ideal, 0.5 * largest)
         for _ in range(4 * MAX_STEPS):
             point = self.at(rho, T)
             if point.p > p:
@@ -176,9 +178,9 @@ class Equation:
 
 def _corrected(point: Point, d_rho: float, d_T: float) -> Point:
     """The point after a last small step, values to first order."""
-    point.p += point.p_rho * d_rho + point.p_T * d_T
-    point.h += point.h_rho * d_rho + point.h_T * d_T
-    point.s += point.s_rho * d_rho + point.s_T * d_T
+    point.p += point.p_rho * d_rho + point.p_t * d_T
+    point.h += point.h_rho * d_rho + point.h_t * d_T
+    point.s += point.s_rho * d_rho + point.s_t * d_T
     point.rho += d_rho
     point.T += d_T
     return point

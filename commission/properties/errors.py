@@ -8,12 +8,12 @@ from commission.errors import NotCalculatedError
 class PropertyRangeError(NotCalculatedError):
     """A state lies outside what the property source is known to hold for; nothing is extrapolated in silence.
 
-    The message names the refrigerant, the quantity, the value asked for and the limit, in the units of a gauge.
+    The message names the substance, the quantity, the value asked for and the limit, in the units of a gauge.
     """
 
-    def __init__(self, refrigerant: str, message: str) -> None:
-        self.refrigerant = refrigerant
-        super().__init__(f"{refrigerant}: {message}")
+    def __init__(self, substance: str, message: str) -> None:
+        self.substance = substance
+        super().__init__(f"{substance}: {message}")
 
 
 def celsius(T: float) -> str:

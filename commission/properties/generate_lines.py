@@ -177,7 +177,9 @@ def _isobar(phases: Phases, p: float, bubble: lines.Line) -> Array:
     wanted = (lines.nodes(FRACTION_NODES) + 1) / 2
     at = 2 * wanted - 1
     for _ in range(30):
-        at = np.clip(at - (chebyshev.chebval(at, to_x) - wanted) / chebyshev.chebval(at, chebyshev.chebder(to_x)), -1, 1)
+        at = np.clip(
+            at - (chebyshev.chebval(at, to_x) - wanted) / chebyshev.chebval(at, chebyshev.chebder(to_x)), -1, 1
+        )
     return np.asarray(chebyshev.chebval(at, to_table))
 
 

@@ -74,8 +74,10 @@ class Phases:
         p_pure, v_pure = np.empty(self.n), np.empty(self.n)
         for i, state in enumerate(pure):
             state.update(self.cp.QT_INPUTS, 0.0, min(T, 0.9 * state.T_critical()))
-            p_pure[i] = state.p() * np.exp(5.4 * (1 - state.T_critical() / T)) / np.exp(
-                5.4 * (1 - state.T_critical() / state.T())
+            p_pure[i] = (
+                state.p()
+                * np.exp(5.4 * (1 - state.T_critical() / T))
+                / np.exp(5.4 * (1 - state.T_critical() / state.T()))
             )
             v_pure[i] = 1.0 / state.rhomolar()
         if incipient == "vapour":
@@ -108,7 +110,9 @@ class Phases:
         else:
             worst = float(np.abs(step).max())
         if not np.isfinite(u).all() or worst > 1e-8 or abs(u[0] - u[1]) < 1e-3:
-            raise NotCalculatedError(f"no phase equilibrium of {'/'.join(self.fluids)} found at {T:.2f} K ({incipient})")
+            raise NotCalculatedError(
+                f"no phase equilibrium of {'/'.join(self.fluids)} found at {T:.2f} K ({incipient})"
+            )
         return self._point(u, T, incipient), u
 
     def _other(self, u: Array) -> Array:

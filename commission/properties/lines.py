@@ -90,7 +90,9 @@ class Line:
         t = x.copy()
         derivative = self._slopes[0]
         for _ in range(12):
-            t = np.clip(t - (chebyshev.chebval(t, self.coefficients[0]) - wanted) / chebyshev.chebval(t, derivative), -1, 1)
+            t = np.clip(
+                t - (chebyshev.chebval(t, self.coefficients[0]) - wanted) / chebyshev.chebval(t, derivative), -1, 1
+            )
         return Chebyshev1(pivot, lo, hi, chebyshev.chebfit(x, t, size - 1))
 
     @property

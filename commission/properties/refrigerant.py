@@ -125,7 +125,7 @@ class Refrigerant:
     def _saturation(self, line: Line, T: float) -> SaturationState:
         self._need_temperature(T)
         ln_p, h, s, ln_rho = line.row(T)
-        if T > NEAR_CRITICAL * self.T_critical:
+        if NEAR_CRITICAL * self.T_critical < T:
             return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho), (self._near_critical(T),))
         return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho))
 
@@ -164,7 +164,7 @@ class Refrigerant:
         if p > self.p_dew_high:
             return _state(self._above(T, p))
         T_dew, start = self._vapour_start(T, p)
-        if T < T_dew * (1 - EDGE):
+        if T_dew * (1 - EDGE) > T:
             raise PropertyRangeError(
                 self.name, f"{celsius(T)} is below the dew point {celsius(T_dew)} at {bar(p)}: not vapour alone"
             )
@@ -194,21 +194,19 @@ class Refrigerant:
             PropertyRangeError: a blend, or `T` or `p` outside the range.
         """
         if not p >= self.p_critical:
-            raise PropertyRangeError(
-                self.name, f"{bar(p)} is not above the critical pressure {bar(self.p_critical)}"
-            )
+            raise PropertyRangeError(self.name, f"{bar(p)} is not above the critical pressure {bar(self.p_critical)}")
         return _state(self._above(T, p))
 
     def slopes(self, state: State) -> Slopes:
         """First derivatives of a single-phase `state` at constant pressure and at constant temperature."""
         point = self._equation.at(state.rho, state.T)
-        alpha = point.p_T / point.p_rho  # -drho/dT at constant pressure
+        alpha = point.p_t / point.p_rho  # -drho/dT at constant pressure
         return Slopes(
             cp=point.cp,
             dh_dp=point.h_rho / point.p_rho,
-            ds_dT=point.cp / point.T,
+            ds_dt=point.cp / point.T,
             ds_dp=point.s_rho / point.p_rho,
-            drho_dT=-alpha,
+            drho_dt=-alpha,
             drho_dp=1 / point.p_rho,
         )
 
@@ -338,7 +336,7 @@ class Refrigerant:
     def _liquid_from_enthalpy(self, bubble: SaturationState, h: float) -> State:
         cp = self._equation.at(bubble.rho, bubble.T).cp
         point = self._equation.solve(bubble.p, "h", h, bubble.rho, bubble.T + (h - bubble.h) / cp)
-        if not point.T >= self.T_low:
+        if not self.T_low <= point.T:
             raise PropertyRangeError(self.name, f"liquid colder than {celsius(self.T_low)}, where the equation ends")
         return _state(point)
 
@@ -349,9 +347,9 @@ class Refrigerant:
         steps = max(1, math.ceil(math.log(p / state.p) / 0.4)) if p > state.p else 4
         for k in range(1, steps + 1):
             p_next = state.p * (p / state.p) ** (k / steps)
-            determinant = point.p_rho * point.s_T - point.p_T * point.s_rho
+            determinant = point.p_rho * point.s_t - point.p_t * point.s_rho
             d_p = p_next - point.p
-            rho = point.rho * math.exp(point.s_T * d_p / determinant / point.rho * _log_share(p_next, point.p))
+            rho = point.rho * math.exp(point.s_t * d_p / determinant / point.rho * _log_share(p_next, point.p))
             T = point.T * math.exp(-point.s_rho * d_p / determinant / point.T * _log_share(p_next, point.p))
             point = self._equation.solve(p_next, "s", state.s, rho, T)
         return _state(self._held(point))

@@ -149,9 +149,7 @@ def _overridden(entry: RegisterEntry, key: str, plain: Mapping[str, Any]) -> Reg
     path = f"{entry.name}.{key}"
     if key not in KINDS:
         raise InputError(
-            Problem(
-                "the register has no such figure", path=path, allowed=", ".join(KINDS), nearest=nearest(key, KINDS)
-            )
+            Problem("the register has no such figure", path=path, allowed=", ".join(KINDS), nearest=nearest(key, KINDS))
         )
     if not str(plain.get("source") or "").strip():
         raise InputError(Problem("a figure that replaces the register's needs its source", path=path))
@@ -170,7 +168,9 @@ def _book() -> Mapping[str, RegisterEntry]:
 
     data = read_yaml("register.yaml")
     names = other_names()
-    return {name: _entry(name, plain, names.get(name, ()), data["sources"]) for name, plain in data["refrigerants"].items()}
+    return {
+        name: _entry(name, plain, names.get(name, ()), data["sources"]) for name, plain in data["refrigerants"].items()
+    }
 
 
 def _entry(name: str, plain: Mapping[str, Any], others: tuple[str, ...], sources: Mapping[str, str]) -> RegisterEntry:

@@ -21,8 +21,8 @@ class SaturationState:
 class State:
     """A state of the refrigerant: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3).
 
-    `quality` is the mass fraction of vapour of a two-phase state and None in a single phase. `warnings` are sentences for
-    the person who reads the result.
+    `quality` is the mass fraction of vapour of a two-phase state and None in a single phase. `warnings` are sentences
+    for the person who reads the result.
     """
 
     T: float
@@ -38,23 +38,23 @@ class State:
 class Slopes:
     """Derivatives of a single-phase state by temperature at constant pressure, and by pressure at constant temperature.
 
-    `cp` = dh/dT (J/(kg K)), `dh_dp` (J/(kg Pa)), `ds_dT` (J/(kg K2)), `ds_dp` (J/(kg K Pa)), `drho_dT` (kg/(m3 K)),
+    `cp` = dh/dT (J/(kg K)), `dh_dp` (J/(kg Pa)), `ds_dt` (J/(kg K2)), `ds_dp` (J/(kg K Pa)), `drho_dt` (kg/(m3 K)),
     `drho_dp` (kg/(m3 Pa)).
     """
 
     cp: float
     dh_dp: float
-    ds_dT: float
+    ds_dt: float
     ds_dp: float
-    drho_dT: float
+    drho_dt: float
     drho_dp: float
 
 
 @dataclass(frozen=True, slots=True)
 class SaturationSlopes:
-    """Derivatives along a saturation line by temperature: of ln p (1/K), h (J/(kg K)), s (J/(kg K2)), ln rho (1/K)."""
+    """Derivatives by temperature along a saturation line: of ln p (1/K), h (J/(kg K)), s (J/(kg K2)), ln rho (1/K)."""
 
-    dlnp_dT: float
-    dh_dT: float
-    ds_dT: float
-    dlnrho_dT: float
+    ln_p: float
+    h: float
+    s: float
+    ln_rho: float

@@ -52,4 +52,4 @@ def pressure_relative_uncertainty(refrigerant: Refrigerant, entry: RegisterEntry
     Where there is no boiling point at atmospheric pressure (R-744) the slope at the lower end of the dew line is used.
     """
     T = refrigerant.T_low if refrigerant.p_dew_low > ATMOSPHERE else refrigerant.dew_temperature(ATMOSPHERE)
-    return temperature_uncertainty(refrigerant, entry) * refrigerant.dew_slopes(T).dlnp_dT
+    return temperature_uncertainty(refrigerant, entry) * refrigerant.dew_slopes(T).ln_p
