@@ -52,20 +52,25 @@ _PRESSURES: tuple[tuple[str, float, tuple[str, ...]], ...] = (
     ("kPa", 1e3, ()),
     ("MPa", 1e6, ()),
     ("Pa", 1.0, ()),
+    ("kgf/cm2", G_N * 1e4, ("kg/cm2", "kp/cm2")),
     ("psi", PSI, ()),
 )
 
 
 def _pressure_units() -> list[Unit]:
     units = []
-    for name, factor, _ in _PRESSURES:
+    for name, factor, same in _PRESSURES:
         for letter, reference, words in (
             ("g", Reference.GAUGE, ("gauge", "ga")),
             ("a", Reference.ABSOLUTE, ("abs", "absolute")),
         ):
             canonical = f"{name}{letter}" if name == "psi" else f"{name} {letter}"
-            others = [f"{name}{letter}", f"{name}({letter})", f"{name} ({letter})", f"{name} {letter}"]
-            others += [f"{name} {word}" for word in words]
+            others = []
+            for spelled in (name, *same):
+                others += [f"{spelled}{letter}", f"{spelled}({letter})", f"{spelled} {letter}"]
+                others += [form for word in words for form in (f"{spelled} {word}", f"{spelled}({word})")]
+            if name in ("bar", "psi"):
+                others.append(f"{name}{letter}".upper())
             units.append(
                 Unit(canonical, K.PRESSURE, factor, 0.0, reference, tuple(o for o in others if o != canonical))
             )
@@ -73,36 +78,72 @@ def _pressure_units() -> list[Unit]:
 
 
 UNITS: tuple[Unit, ...] = (
-    Unit("°C", K.TEMPERATURE, 1.0, 273.15, None, ("C", "degC", "deg C", "º C", "ºC", "° C", "℃")),
-    Unit("°F", K.TEMPERATURE, FAHRENHEIT, 459.67 * FAHRENHEIT, None, ("F", "degF", "deg F", "ºF", "° F", "℉")),
-    Unit("K", K.TEMPERATURE_DIFFERENCE, 1.0, 0.0, None, ("Δ°C", "delta °C", "°C difference", "kelvin")),
+    Unit("°C", K.TEMPERATURE, 1.0, 273.15, None, ("C", "degC", "deg. C", "℃", "Celsius", "celsius", "degrees Celsius")),
+    Unit(
+        "°F",
+        K.TEMPERATURE,
+        FAHRENHEIT,
+        459.67 * FAHRENHEIT,
+        None,
+        ("F", "degF", "deg. F", "℉", "Fahrenheit", "fahrenheit", "degrees Fahrenheit"),
+    ),
+    Unit(
+        "K",
+        K.TEMPERATURE_DIFFERENCE,
+        1.0,
+        0.0,
+        None,
+        ("Δ°C", "delta °C", "°C difference", "kelvin", "ΔK", "delta K", "K difference", "°K"),
+    ),
     Unit(
         "°F difference",
         K.TEMPERATURE_DIFFERENCE,
         FAHRENHEIT,
         0.0,
         None,
-        ("Δ°F", "delta °F", "delta F", "°R", "degF difference", "F difference", "°F diff"),
+        ("Δ°F", "ΔF", "delta °F", "delta F", "°R", "degF difference", "F difference", "°F diff"),
     ),
     *_pressure_units(),
     Unit("micron", K.PRESSURE, MM_HG * 1e-3, 0.0, Reference.ABSOLUTE, ("microns", "µm Hg", "micron Hg")),
     Unit("Torr", K.PRESSURE, 101325 / 760, 0.0, Reference.ABSOLUTE, ("torr",)),
-    Unit("inHg a", K.PRESSURE, MM_HG * 25.4, 0.0, Reference.ABSOLUTE, ("in Hg a", "in Hg abs", "inHg abs")),
-    Unit("inHg vacuum", K.PRESSURE, -MM_HG * 25.4, 0.0, Reference.GAUGE, ("in Hg vacuum", "in Hg vac", "inHg vac")),
+    Unit("inHg a", K.PRESSURE, MM_HG * 25.4, 0.0, Reference.ABSOLUTE, ("in Hg abs", "in. Hg a", "in. Hg abs")),
+    Unit(
+        "inHg vacuum",
+        K.PRESSURE,
+        -MM_HG * 25.4,
+        0.0,
+        Reference.GAUGE,
+        ("in Hg vac", "inHg vac", "in. Hg vacuum", "in. Hg vac"),
+    ),
+    Unit("mmHg a", K.PRESSURE, MM_HG, 0.0, Reference.ABSOLUTE, ("mm Hg abs",)),
     Unit("Pa", K.PRESSURE_DIFFERENCE, 1.0),
+    Unit("hPa", K.PRESSURE_DIFFERENCE, 1e2),
     Unit("mbar", K.PRESSURE_DIFFERENCE, 1e2),
     Unit("kPa", K.PRESSURE_DIFFERENCE, 1e3),
     Unit("bar", K.PRESSURE_DIFFERENCE, 1e5),
     Unit("psi", K.PRESSURE_DIFFERENCE, PSI),
+    Unit("MPa", K.PRESSURE_DIFFERENCE, 1e6),
+    Unit("kgf/cm2", K.PRESSURE_DIFFERENCE, G_N * 1e4, 0.0, None, ("kg/cm2", "kp/cm2")),
+    Unit("micron", K.PRESSURE_DIFFERENCE, MM_HG * 1e-3, 0.0, None, ("microns", "µm Hg", "micron Hg")),
+    Unit("Torr", K.PRESSURE_DIFFERENCE, 101325 / 760, 0.0, None, ("torr",)),
+    Unit("mmHg", K.PRESSURE_DIFFERENCE, MM_HG, 0.0, None, ("mm Hg",)),
+    Unit("inHg", K.PRESSURE_DIFFERENCE, MM_HG * 25.4, 0.0, None, ("in Hg", "in. Hg")),
     Unit("mm w.g.", K.PRESSURE_DIFFERENCE, MM_WATER, 0.0, None, ("mmH2O", "mm wg", "mm w.c.", "mm H2O")),
     Unit("m w.g.", K.PRESSURE_DIFFERENCE, MM_WATER * 1e3, 0.0, None, ("m wg", "mH2O", "m H2O")),
-    Unit("in w.g.", K.PRESSURE_DIFFERENCE, MM_WATER * 25.4, 0.0, None, ("inH2O", "in wg", "in. w.g.", "in w.c.")),
+    Unit(
+        "in w.g.",
+        K.PRESSURE_DIFFERENCE,
+        MM_WATER * 25.4,
+        0.0,
+        None,
+        ("inH2O", "in wg", "in. w.g.", "in w.c.", "in. w.c.", "in wc", "in. wg", "in. wc", "inwg", "inwc"),
+    ),
     Unit("ft w.g.", K.PRESSURE_DIFFERENCE, MM_WATER * 304.8, 0.0, None, ("ft wg", "ftH2O", "ft H2O", "ft w.c.")),
     Unit("W", K.POWER, 1.0, 0.0, None, ("watt", "watts")),
     Unit("kW", K.POWER, 1e3, 0.0, None, ("KW",)),
     Unit("MW", K.POWER, 1e6),
     Unit("Btu/h", K.POWER, BTU / 3600, 0.0, None, ("BTU/h", "Btuh", "BTUH", "Btu/hr", "BTU/hr")),
-    Unit("MBH", K.POWER, BTU / 3.6, 0.0, None, ("kBtu/h", "MBtu/h")),
+    Unit("MBH", K.POWER, BTU / 3.6, 0.0, None, ("kBtu/h", "kBtu/hr", "kBtuh")),
     Unit(
         "refrigeration tons",
         K.POWER,
@@ -111,6 +152,8 @@ UNITS: tuple[Unit, ...] = (
         None,
         ("refrigeration ton", "tons of refrigeration", "ton of refrigeration", "TR", "tons refrigeration"),
     ),
+    Unit("MMBtu/h", K.POWER, BTU / 3.6e-3, 0.0, None, ("MMBtu/hr", "MMBTU/h", "MMBtuh")),
+    Unit("kcal/h", K.POWER, 4186.8 / 3600),
     Unit("hp", K.POWER, HORSEPOWER, 0.0, None, ("HP", "bhp")),
     Unit("J", K.ENERGY, 1.0),
     Unit("kJ", K.ENERGY, 1e3),
@@ -133,11 +176,12 @@ UNITS: tuple[Unit, ...] = (
     Unit("mm", K.LENGTH, 1e-3),
     Unit("km", K.LENGTH, 1e3),
     Unit("ft", K.LENGTH, FOOT, 0.0, None, ("feet", "foot")),
-    Unit("in", K.LENGTH, INCH, 0.0, None, ("inch", "inches", "in.")),
+    Unit("in", K.LENGTH, INCH, 0.0, None, ("inch", "inches", "in.", '"')),
     Unit("m2", K.AREA, 1.0, 0.0, None, ("m²", "m^2", "sq m")),
     Unit("ft2", K.AREA, FOOT**2, 0.0, None, ("ft²", "ft^2", "sq ft", "sqft")),
     Unit("m3/h", K.VOLUME_FLOW, 1 / 3600, 0.0, None, ("m³/h", "m^3/h", "cmh", "m3/hr", "m³/hr")),
     Unit("m3/s", K.VOLUME_FLOW, 1.0, 0.0, None, ("m³/s", "m^3/s")),
+    Unit("m3/min", K.VOLUME_FLOW, 1 / 60, 0.0, None, ("m³/min", "m^3/min")),
     Unit("L/s", K.VOLUME_FLOW, 1e-3, 0.0, None, ("l/s", "lps")),
     Unit("L/min", K.VOLUME_FLOW, 1e-3 / 60, 0.0, None, ("l/min", "lpm")),
     Unit("L/h", K.VOLUME_FLOW, 1e-3 / 3600, 0.0, None, ("l/h", "lph")),
@@ -147,6 +191,7 @@ UNITS: tuple[Unit, ...] = (
     Unit("g/s", K.MASS_FLOW, 1e-3),
     Unit("kg/h", K.MASS_FLOW, 1 / 3600, 0.0, None, ("kg/hr",)),
     Unit("lb/h", K.MASS_FLOW, POUND / 3600, 0.0, None, ("lb/hr", "lbs/h")),
+    Unit("kg/min", K.MASS_FLOW, 1 / 60),
     Unit("lb/min", K.MASS_FLOW, POUND / 60),
     Unit("W/K", K.CONDUCTANCE, 1.0),
     Unit("kW/K", K.CONDUCTANCE, 1e3),
@@ -163,7 +208,8 @@ UNITS: tuple[Unit, ...] = (
     Unit("min", K.DURATION, 60.0, 0.0, None, ("mins", "minute", "minutes")),
     Unit("h", K.DURATION, 3600.0, 0.0, None, ("hr", "hrs", "hour", "hours")),
     Unit("d", K.DURATION, 86400.0, 0.0, None, ("day", "days")),
-    Unit("%", K.RATIO, 1e-2, 0.0, None, ("percent", "% RH", "%RH", "per cent")),
+    Unit("weeks", K.DURATION, 604800.0, 0.0, None, ("week",)),
+    Unit("%", K.RATIO, 1e-2, 0.0, None, ("percent", "% RH", "% rh", "per cent")),
     Unit("kg/m3", K.DENSITY, 1.0, 0.0, None, ("kg/m³",)),
     Unit("g/m3", K.DENSITY, 1e-3, 0.0, None, ("g/m³",)),
     Unit("lb/ft3", K.DENSITY, POUND / FOOT**3, 0.0, None, ("lb/ft³",)),
@@ -173,9 +219,12 @@ UNITS: tuple[Unit, ...] = (
 )
 
 
+_ONE_SIGN = str.maketrans({"º": "°", "˚": "°", "μ": "µ", "∆": "Δ", "·": "", "⋅": ""})
+
+
 def _squeeze(spelling: str) -> str:
-    """A spelling without the spaces and with one degree sign, so that `bar  g` and `bar g` are one."""
-    return "".join(spelling.split()).replace("º", "°").replace("μ", "µ")
+    """A spelling without spaces and middle dots and with one sign for each meaning: `bar  g` and `bar g` are one."""
+    return "".join(spelling.split()).translate(_ONE_SIGN)
 
 
 def units_of(kind: Kind) -> tuple[Unit, ...]:

@@ -1,0 +1,80 @@
+"""Numbers are shown in the reader's units, and read back to what they were."""
+
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
+
+from commission.quantities import NOMENCLATURE, SI_UNIT, Display, Kind, json_value, parse, parse_pressure
+
+BAROMETER = 97_656.0
+SHOWN = {"m³": "m3", "m²": "m2", "ft³": "ft3", "ft²": "ft2"}
+
+
+@pytest.mark.parametrize(
+    ("system", "kind", "value", "text"),
+    [
+        ("metric", Kind.TEMPERATURE, 265.15, "−8.0 °C"),
+        ("us_customary", Kind.TEMPERATURE, 263.15, "14.0 °F"),
+        ("metric", Kind.PRESSURE, 331_000.0, "2.33 bar g"),
+        ("us_customary", Kind.PRESSURE, BAROMETER, "0.0 psig"),
+        ("metric", Kind.POWER, 3_450.0, "3.45 kW"),
+        ("metric", Kind.VOLUME_FLOW, 0.5, "1800 m³/h"),
+        ("metric", Kind.RATIO, 0.85, "85 %"),
+        ("metric", Kind.NUMBER, 3.456, "3.46"),
+        ("metric", Kind.TEMPERATURE_DIFFERENCE, -0.04, "0.0 K"),
+        ("us_customary", Kind.TEMPERATURE_DIFFERENCE, 6.0, "10.8 °F difference"),
+    ],
+)
+def test_text(system: str, kind: Kind, value: float, text: str) -> None:
+    """Number, unit, true minus sign, no negative zero; pressures say gauge."""
+    assert Display(system, BAROMETER).text(value, kind) == text  # type: ignore[arg-type]  # parametrised
+
+
+@given(
+    value=st.floats(min_value=200.0, max_value=2e6),
+    kind=st.sampled_from([k for k in Kind if k is not Kind.SOUND_LEVEL]),
+    system=st.sampled_from(["metric", "us_customary"]),
+)
+def test_what_is_shown_reads_back(value: float, kind: Kind, system: str) -> None:
+    """Shown with nine digits and read again, a value of any kind is what it was, in both unit systems."""
+    display = Display(system, BAROMETER)  # type: ignore[arg-type]  # sampled
+    text = display.text(value, kind, digits=9)
+    for shown, written in SHOWN.items():
+        text = text.replace(shown, written)
+    again = parse_pressure(text).absolute(BAROMETER) if kind is Kind.PRESSURE else parse(text, kind)
+    assert again == pytest.approx(value, rel=1e-6)
+
+
+def test_every_kind_can_be_shown_with_its_spread() -> None:
+    """No kind lacks a unit in either system; the spread of a temperature is in K or °F difference."""
+    for system in ("metric", "us_customary"):
+        display = Display(system, BAROMETER)  # type: ignore[arg-type]  # the two words of the type
+        for kind in Kind:
+            assert display.text(300.0, kind)
+            assert display.spread(1.0, kind)
+            assert display.spread_unit(kind) or kind is Kind.NUMBER
+    assert Display("metric", BAROMETER).spread_unit(Kind.TEMPERATURE) == "K"
+    assert Display("us_customary", BAROMETER).spread(5.0, Kind.TEMPERATURE) == "9.0"
+    assert Display("metric", BAROMETER).spread_unit(Kind.PRESSURE) == "bar"
+
+
+def test_json_speaks_celsius_and_absolute_pascal() -> None:
+    """Machine output is °C for temperatures and SI for the rest."""
+    assert json_value(265.15, Kind.TEMPERATURE) == (pytest.approx(-8.0), "°C")
+    assert json_value(3e5, Kind.PRESSURE) == (3e5, "Pa")
+    for kind in Kind:
+        assert json_value(1.0, kind)[1] == ("°C" if kind is Kind.TEMPERATURE else SI_UNIT[kind])
+
+
+def test_every_quantity_of_the_nomenclature_says_what_it_means() -> None:
+    """Keys are words with underscores; each has a symbol, a label and a definition of its own."""
+    definitions = [q.definition for q in NOMENCLATURE.values() if "unbalance" not in q.key]
+    assert len(definitions) == len(set(definitions))
+    for key, quantity in NOMENCLATURE.items():
+        assert quantity.key == key
+        assert key == key.lower()
+        assert key.replace("_", "").isalpha()
+        assert quantity.symbol
+        assert quantity.label[0].isupper()
+        assert len(quantity.definition) > 10
+        assert Display("metric", BAROMETER).of(key, 300.0)
