@@ -1,0 +1,92 @@
+"""Which pages a manual has, in which order: the table of contents as one function."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.manual import plant_pages, safety_pages, system_pages
+from commission.manual.book import Book, OwnerFile
+from commission.manual.checklist_pages import checklist_page
+from commission.manual.day_sheet import day_sheet
+from commission.manual.documents import copied_files, document_links, owner_pages
+from commission.manual.findings import findings_page
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.plots import Figure, charts, draw, ph_figure
+from commission.manual.saturation import saturation_page
+from commission.manual.states import Standing
+from commission.manual.store import Store
+
+if TYPE_CHECKING:
+    from commission.review import Finding
+
+
+@dataclass(frozen=True, slots=True)
+class Contents:
+    """Everything that is written: pages, the owner's files, figures, and what was left out."""
+
+    book: Book
+    owner_files: tuple[OwnerFile, ...]
+    texts: dict[str, bytes]
+    findings: tuple[Finding, ...]
+    left_out: tuple[str, ...]
+
+
+def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], None]) -> Contents:
+    """All pages of the manual, with links that are checked when they are rendered."""
+    from commission.review import review
+
+    book = Book()
+    documents, left_documents = copied_files(plant.loaded.folder)
+    pages, left_pages = owner_pages(plant.loaded.folder)
+    texts: dict[str, bytes] = {}
+    for path in ("search-index.js", "scripts/search.js", *(f.site_path for f in documents)):
+        book.add_file(path)
+
+    progress("reviewing")
+    findings = review(plant.loaded)
+    standings = {d.id: Standing(d.because, 0, 0, (), bool(d.system.guarantee), 0) for d in plant.systems}
+    counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
+    book.add(plant_pages.at_a_glance(plant, standings, 0, counts))
+    book.add(safety_pages.emergency_page(plant))
+    for data in plant.systems:
+        _system(book, plant, data, documents, texts, store, progress)
+    book.add(findings_page(plant, findings))
+    book.add(plant_pages.instruments(plant))
+    links = {"": document_links(plant.loaded, documents, None)}
+    links |= {d.id: document_links(plant.loaded, documents, d.id) for d in plant.systems}
+    book.add(plant_pages.documents_page(plant, links, tuple(f.site_path for f in documents)))
+    for page in pages:
+        if page.sheet is not None:
+            book.add(page.sheet)
+    book.add(plant_pages.method_page())
+    book.add(plant_pages.carry_page())
+    book.add(plant_pages.search_page())
+    return Contents(book, (*documents, *pages), texts, findings, (*left_documents, *left_pages))
+
+
+def _system(
+    book: Book,
+    plant: PlantData,
+    data: SystemData,
+    documents: tuple[OwnerFile, ...],
+    texts: dict[str, bytes],
+    store: Store | None,
+    progress: Callable[[str], None],
+) -> None:
+    """The pages of one system, in the order in which they are needed."""
+    progress(f"drawing {data.id}")
+    weather: tuple[Figure, ...] = charts(data, data.grid, plant.display) if data.grid else ()
+    cycle = ph_figure(data)
+    for figure in (*weather, *([cycle] if cycle else [])):
+        for path, svg in draw(figure, store).items():
+            texts[path] = svg
+            book.add_file(path)
+    book.add(system_pages.what_it_is(plant, data, document_links(plant.loaded, documents, data.id)))
+    book.add(system_pages.how_it_should_run(plant, data, weather, cycle))
+    book.add(saturation_page(plant, data))
+    book.add(checklist_page(plant, data))
+    book.add(day_sheet(plant, data))
+    book.add(safety_pages.safety_page(plant, data))
+    book.add(system_pages.assumptions(plant, data))

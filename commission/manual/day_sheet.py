@@ -1,0 +1,138 @@
+"""The day sheet for pencil: conditions, readings, and the expected band at each outdoor temperature."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+from commission.manual.book import Sheet
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.grid import Grid, GridPoint
+from commission.manual.showing import label_of, unit_of
+from commission.manual.system_pages import Cell, conditions_line, grid_cell
+from commission.quantities import NOMENCLATURE, Display, Kind
+
+READ = (
+    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
+    "heat_source_outlet_temperature", "heat_sink_outlet_temperature", "power_input", "current",
+)  # fmt: skip
+"""What is read directly."""
+
+WORKED_OUT = (
+    "evaporator_temperature_difference", "superheat", "compressor_superheat", "condenser_temperature_difference",
+    "subcooling", "heat_source_temperature_change", "heat_sink_temperature_change",
+)  # fmt: skip
+"""What follows from the readings: differences, which a pencil can do."""
+
+_HOW = {
+    "evaporator_temperature_difference": "source inlet minus saturation at the low-side gauge",
+    "superheat": "evaporator outlet minus saturation at the low-side gauge",
+    "compressor_superheat": "suction line minus saturation at the low-side gauge",
+    "condenser_temperature_difference": "saturation at the high-side gauge minus sink inlet",
+    "subcooling": "saturation at the high-side gauge minus liquid line",
+    "heat_source_temperature_change": "inlet minus outlet",
+    "heat_sink_temperature_change": "outlet minus inlet",
+}
+_MOST_COLUMNS = 9
+
+
+@dataclass(frozen=True, slots=True)
+class SheetRow:
+    """One line: what, unit, how it is worked out, instrument, and a band for each column."""
+
+    label: str
+    unit: str
+    how: str
+    instrument: str
+    cells: tuple[Cell, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class SheetTable:
+    """A table with at most as many columns as fit on paper."""
+
+    heads: tuple[str, ...]
+    read: tuple[SheetRow, ...]
+    worked_out: tuple[SheetRow, ...]
+
+
+def _rows(data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...], display: Display) -> tuple[SheetRow, ...]:
+    rows = []
+    for key in keys:
+        if not any(p.prediction and key in p.prediction.expected for p in points):
+            continue
+        rows.append(
+            SheetRow(
+                label_of(key),
+                unit_of(display, NOMENCLATURE[key].kind),
+                _HOW.get(key, ""),
+                data.system.measured_with.get(key, ""),
+                tuple(grid_cell(p, key, display) for p in points),
+            )
+        )
+    return tuple(rows)
+
+
+def sheet_tables(data: SystemData, grid: Grid, display: Display) -> tuple[SheetTable, ...]:
+    """The grid in tables that fit on a page."""
+    n = len(grid.points)
+    count = -(-n // _MOST_COLUMNS)
+    size = -(-n // count) if count else 0
+    tables = []
+    for start in range(0, n, size or 1):
+        points = grid.points[start : start + size]
+        heads = tuple(display.number(p.temperature, Kind.TEMPERATURE, 0) for p in points)
+        tables.append(
+            SheetTable(heads, _rows(data, READ, points, display), _rows(data, WORKED_OUT, points, display))
+        )
+    return tuple(tables)
+
+
+def _plain_rows(data: SystemData, keys: tuple[str, ...], display: Display) -> tuple[SheetRow, ...]:
+    """Rows without expectations, for a system that cannot be calculated."""
+    return tuple(
+        SheetRow(label_of(k), unit_of(display, NOMENCLATURE[k].kind), _HOW.get(k, ""), data.system.measured_with.get(k, ""), ())
+        for k in keys
+    )
+
+
+def _condition_rows(data: SystemData, display: Display) -> list[dict[str, str]]:
+    keys = list(data.model.condition_axes) if data.model else ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
+    rated = data.rated.conditions if data.rated else {}
+    return [
+        {
+            "label": label_of(k),
+            "unit": unit_of(display, NOMENCLATURE[k].kind),
+            "rated": display.number(rated[k], NOMENCLATURE[k].kind) if k in rated else "",
+            "instrument": data.system.measured_with.get(k, ""),
+        }
+        for k in keys
+    ]
+
+
+def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
+    """The sheet as a page: made to be printed, filled in with a pencil, and filed as a record afterwards."""
+    display = plant.display
+    grid = data.grid if data.grid and any(p.prediction for p in data.grid.points) else None
+    tables = (
+        sheet_tables(data, grid, display)
+        if grid
+        else (SheetTable((), _plain_rows(data, READ, display), _plain_rows(data, WORKED_OUT, display)),)
+    )
+    context: dict[str, Any] = {
+        "because": data.because,
+        "plant_name": plant.name,
+        "system_name": data.name,
+        "digest": plant.loaded.digest[:12],
+        "conditions": _condition_rows(data, display),
+        "tables": tables,
+        "axis": grid.title if grid else "",
+        "axis_unit": unit_of(display, Kind.TEMPERATURE),
+        "fixed": conditions_line(grid.fixed, display) if grid else "",
+        "instruments": [
+            (name, i.serial or "", i.calibrated_until.isoformat() if i.calibrated_until else "")
+            for name, i in plant.loaded.plant.instruments.items()
+        ],
+        "saturation": data.page("saturation-table"),
+    }
+    return Sheet(data.page("day-sheet"), "Day sheet", data.group, "day_sheet.html", context, data.kicker, paper=True)

@@ -1,0 +1,109 @@
+"""Asks every room below what it knows of the plant, once; a system that cannot be calculated keeps its reason."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.description import Assumption, LoadedPlant, System
+from commission.errors import CommissionError, NotCalculatedError
+from commission.manual.book import slugs
+from commission.manual.grid import Grid, make_grid
+from commission.quantities import Display
+
+if TYPE_CHECKING:
+    from commission.prediction import Prediction, SystemModel
+
+
+@dataclass(frozen=True, slots=True)
+class SystemData:
+    """Everything the pages of one system show. `because` is the reason where the system cannot be calculated."""
+
+    id: str
+    slug: str
+    system: System
+    model: SystemModel | None
+    because: str | None
+    rated: Prediction | None
+    assumptions: Mapping[str, Assumption]
+    grid: Grid | None
+    effects: Mapping[str, Mapping[str, float]]
+
+    @property
+    def name(self) -> str:
+        """The name as people on site say it."""
+        return self.system.name or self.id
+
+    @property
+    def group(self) -> str:
+        """The group of its pages."""
+        return f"system:{self.id}"
+
+    @property
+    def kicker(self) -> str:
+        """The line above the titles of its pages."""
+        return f"{self.name} · {self.system.refrigerant}"
+
+    def page(self, name: str) -> str:
+        """The id of one of its pages."""
+        return f"systems/{self.slug}/{name}"
+
+
+@dataclass(frozen=True, slots=True)
+class PlantData:
+    """Everything the pages show."""
+
+    loaded: LoadedPlant
+    display: Display
+    systems: tuple[SystemData, ...]
+
+    @property
+    def name(self) -> str:
+        """The name of the plant."""
+        return self.loaded.plant.plant.name
+
+
+def gather(loaded: LoadedPlant, progress: Callable[[str], None]) -> PlantData:
+    """Calculates every system once."""
+    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    names = slugs(tuple(loaded.plant.systems))
+    systems = tuple(_system(loaded, identity, slug, progress) for identity, slug in names.items())
+    return PlantData(loaded, display, systems)
+
+
+def _system(loaded: LoadedPlant, identity: str, slug: str, progress: Callable[[str], None]) -> SystemData:
+    from commission.prediction import fit
+
+    progress(f"calculating {identity}")
+    system = loaded.system(identity)
+    try:
+        model = fit(loaded, identity)
+        rated = model.predict()
+    except CommissionError as error:
+        return SystemData(identity, slug, system, None, _reason(error), None, loaded.assumptions(identity), None, {})
+    grid = make_grid(loaded, system, model)
+    try:
+        effects = model.assumption_effects(_far_condition(grid, rated))
+    except NotCalculatedError:
+        effects = {}
+    return SystemData(identity, slug, system, model, None, rated, model.assumptions, grid, effects)
+
+
+def _reason(error: CommissionError) -> str:
+    return "; ".join(p.message for p in error.problems)
+
+
+def far_point(grid: Grid | None, rated: Prediction) -> Prediction:
+    """The prediction of the grid that lies furthest from the rated condition, where assumptions show most."""
+    if grid is None:
+        return rated
+    at = rated.conditions.get(grid.key)
+    found = [p.prediction for p in grid.points if p.prediction is not None]
+    if at is None or not found:
+        return rated
+    return max(found, key=lambda p: abs(p.conditions[grid.key] - at))
+
+
+def _far_condition(grid: Grid | None, rated: Prediction) -> Mapping[str, float]:
+    return far_point(grid, rated).conditions

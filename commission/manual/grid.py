@@ -1,0 +1,91 @@
+"""Expected readings over outdoor temperature: the grid of every 5 K and the finer line of the charts."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.description import LoadedPlant, System
+from commission.errors import NotCalculatedError
+from commission.quantities import NOMENCLATURE
+
+if TYPE_CHECKING:
+    from commission.prediction import Prediction, SystemModel
+
+STEP = 5.0
+_ZERO_C = 273.15
+_MOST_POINTS = 14
+
+
+@dataclass(frozen=True, slots=True)
+class GridPoint:
+    """One temperature of the grid with its prediction, or the reason why there is none."""
+
+    temperature: float
+    prediction: Prediction | None
+    because: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Grid:
+    """Expected readings along one condition; all other conditions are at `fixed`.
+
+    `key` is the condition that varies, `title` its name as a person says it, `points` every 5 K (the printed table)
+    and `line` every 2.5 K (the charts), in ascending order; temperatures in K.
+    """
+
+    key: str
+    title: str
+    fixed: Mapping[str, float]
+    points: tuple[GridPoint, ...]
+    line: tuple[GridPoint, ...]
+
+
+def outdoor_axis(loaded: LoadedPlant, system: System) -> tuple[str, str]:
+    """The condition that follows the weather, and its name: the side that is outdoors, else the heat sink."""
+    for side, medium in (("heat_sink", system.heat_sink), ("heat_source", system.heat_source)):
+        space = loaded.plant.spaces.get(medium.space) if medium.space else None
+        if space is not None and space.outdoors:
+            return f"{side}_inlet_temperature", "Outdoor air"
+    if system.duty in ("space_heating", "water_heating"):
+        return "heat_source_inlet_temperature", NOMENCLATURE["heat_source_inlet_temperature"].label
+    return "heat_sink_inlet_temperature", NOMENCLATURE["heat_sink_inlet_temperature"].label
+
+
+def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[float, ...]:
+    """The temperatures of the printed grid in K: multiples of 5 °C that cover the site's weather and the rated point.
+
+    They stay inside the range that the model states for this condition.
+    """
+    axis = model.condition_axes[key]
+    climate = loaded.plant.plant.climate
+    wanted = [axis.rated]
+    wanted += [t for t in (climate.winter_dry_bulb, climate.summer_dry_bulb) if t is not None]
+    low, high = (min(wanted), max(wanted)) if len(wanted) == 3 else (axis.low, axis.high)
+    first = math.floor(round((low - _ZERO_C) / STEP, 6))
+    last = math.ceil(round((high - _ZERO_C) / STEP, 6))
+    all_of_them = [n * STEP + _ZERO_C for n in range(first, last + 1)]
+    inside = [t for t in all_of_them if axis.low - 1e-6 <= t <= axis.high + 1e-6]
+    return tuple(inside[-_MOST_POINTS:])
+
+
+def _walk(model: SystemModel, key: str, values: tuple[float, ...]) -> tuple[GridPoint, ...]:
+    found = model.grid(key, values, {k: v for k, v in model.rated_condition.items() if k != key})
+    return tuple(
+        GridPoint(t, None, p.problems[0].message) if isinstance(p, NotCalculatedError) else GridPoint(t, p)
+        for t, p in zip(values, found, strict=True)
+    )
+
+
+def make_grid(loaded: LoadedPlant, system: System, model: SystemModel) -> Grid | None:
+    """The grid of one system, or None where the model has no such condition."""
+    key, title = outdoor_axis(loaded, system)
+    if key not in model.condition_axes:
+        return None
+    coarse = temperatures(loaded, key, model)
+    middles = [0.5 * (a + b) for a, b in zip(coarse, coarse[1:], strict=False)]
+    line = _walk(model, key, tuple(sorted({*coarse, *middles})))
+    fixed = {k: v for k, v in model.rated_condition.items() if k != key}
+    return Grid(key, title, fixed, tuple(p for p in line if p.temperature in coarse), line)

@@ -1,0 +1,177 @@
+"""The pages of the plant as a whole."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from commission.manual.book import Sheet, slug
+from commission.manual.documents import DocumentLink
+from commission.manual.facts import DUTY_WORDS, Fact
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.states import Next, Standing, Step, most_urgent, next_step, steps
+from commission.quantities import NOMENCLATURE, Display, Kind, methods
+
+
+@dataclass(frozen=True, slots=True)
+class GlanceSystem:
+    """One system on the front page."""
+
+    name: str
+    line: str
+    steps: tuple[Step, ...]
+    next: Next
+    doors: tuple[tuple[str, str], ...]
+    because: str | None
+
+
+def at_a_glance(plant: PlantData, standings: dict[str, Standing], open_items: int, counts: dict[str, int]) -> Sheet:
+    """The front page: what plant this is, where each system stands, what is open, what to do next."""
+    shown, urgent = [], []
+    for data in plant.systems:
+        pages = {
+            "what": data.page("what-it-is"),
+            "findings": "findings",
+            "checklist": data.page("checklist"),
+            "day_sheet": data.page("day-sheet"),
+            "test": data.page("test-sheet"),
+            "open": "open-items",
+        }
+        standing = standings[data.id]
+        step = next_step(standing, pages)
+        urgent.append((data.name, step, standing))
+        doors = tuple(
+            (data.page(p), t)
+            for p, t in (
+                ("how-it-should-run", "How it should run"),
+                ("checklist", "Checklist"),
+                ("day-sheet", "Day sheet"),
+                ("records", "Records"),
+            )
+        )
+        shown.append(GlanceSystem(data.name, _system_line(data, plant.display), steps(standing), step, doors, data.because))
+    site = plant.loaded.plant.plant
+    context = {
+        "systems": shown,
+        "urgent": most_urgent(urgent),
+        "address": site.address,
+        "summary": _summary(plant),
+        "open_items": open_items,
+        "counts": counts,
+    }
+    return Sheet("index", plant.name, "plant", "glance.html", context, short="Plant at a glance")
+
+
+def _system_line(data: SystemData, display: Display) -> str:
+    s = data.system
+    parts = [DUTY_WORDS.get(s.duty, s.duty), s.refrigerant]
+    if s.charge is not None:
+        parts[-1] += f", {display.text(s.charge, Kind.MASS)}"
+    rated = data.rated.expected.get("cooling_capacity") if data.rated else None
+    if rated is not None and s.duty not in ("space_heating", "water_heating"):
+        parts.append(f"{display.text(rated.value, Kind.POWER, 1)} cooling")
+    heat = data.rated.expected.get("heating_capacity") if data.rated else None
+    if heat is not None and s.duty in ("space_heating", "water_heating"):
+        parts.append(f"{display.text(heat.value, Kind.POWER, 1)} heating")
+    return " · ".join(parts)
+
+
+def _summary(plant: PlantData) -> str:
+    n = len(plant.systems)
+    site = plant.loaded.plant.plant
+    return (
+        f"{n} refrigerating system{'s' if n != 1 else ''}, {plant.display.text(site.altitude, Kind.LENGTH, 0)} above "
+        f"sea level, air pressure {plant.loaded.barometric_pressure / 100:.0f} hPa."
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class ShownInstrument:
+    """One instrument."""
+
+    anchor: str
+    name: str
+    facts: tuple[Fact, ...]
+    until: str | None
+
+
+def instruments(plant: PlantData) -> Sheet:
+    """Instruments with serial, accuracy and calibration."""
+    shown = []
+    for name, i in plant.loaded.plant.instruments.items():
+        place = str(plant.loaded.where(("instruments", name)))
+        accuracy = []
+        if i.accuracy is not None:
+            if i.accuracy.of_span is not None:
+                accuracy.append(f"{plant.display.text(i.accuracy.of_span, Kind.RATIO, 2)} of span")
+            if i.accuracy.of_reading is not None:
+                accuracy.append(f"{plant.display.text(i.accuracy.of_reading, Kind.RATIO, 2)} of reading")
+            if i.accuracy.absolute is not None:
+                accuracy.append(i.accuracy.absolute)
+        pairs = [
+            ("Measures", i.measures),
+            ("Scale", " to ".join(t for t in (i.from_, i.to) if t)),
+            ("Accuracy", " plus ".join(accuracy)),
+            ("Class", i.class_ or ""),
+            ("Smallest step", i.resolution or ""),
+            ("Clamped on the pipe", "yes: reads the pipe, not the flow" if i.clamped_on else ""),
+            ("Matched pair", "yes: compared in one bath" if i.matched_pair else ""),
+            ("Serial number", i.serial or "not stated: a report with this instrument is void"),
+            ("Calibrated on", i.calibrated_on.isoformat() if i.calibrated_on else ""),
+            ("Calibrated until", i.calibrated_until.isoformat() if i.calibrated_until
+             else "not stated: a report with this instrument is void"),
+            ("Used for", ", ".join(_used_for(plant, name))),
+        ]  # fmt: skip
+        facts = tuple(Fact(label, text, place) for label, text in pairs if text)
+        until = i.calibrated_until.isoformat() if i.calibrated_until else None
+        shown.append(ShownInstrument(slug(name), name, facts, until))
+    return Sheet("instruments", "Instruments", "plant", "instruments.html", {"instruments": shown})
+
+
+def _used_for(plant: PlantData, name: str) -> list[str]:
+    found = []
+    for data in plant.systems:
+        for key, instrument in data.system.measured_with.items():
+            if instrument == name:
+                label = NOMENCLATURE[key].label.lower() if key in NOMENCLATURE else key
+                found.append(f"{label} ({data.name})" if len(plant.systems) > 1 else label)
+    return found
+
+
+def method_page() -> Sheet:
+    """All methods with formula and source, and the nomenclature."""
+    groups: dict[str, list[object]] = {}
+    for kind in Kind:
+        quantities = [q for q in NOMENCLATURE.values() if q.kind is kind]
+        if quantities:
+            groups[kind.value] = list(quantities)
+    return Sheet(
+        "methods",
+        "Methods and quantities",
+        "reference",
+        "methods.html",
+        {"methods": list(methods().values()), "groups": groups},
+    )
+
+
+def documents_page(plant: PlantData, links: dict[str, tuple[DocumentLink, ...]], files: tuple[str, ...]) -> Sheet:
+    """All documents: those the description names, and the other files in the folder."""
+    named = {d.path for documents in links.values() for d in documents if d.path}
+    others = tuple(f for f in files if f not in named)
+    groups = [("The plant", links.get("", ()))] + [(d.name, links.get(d.id, ())) for d in plant.systems]
+    return Sheet(
+        "documents",
+        "Documents",
+        "plant",
+        "documents.html",
+        {"groups": [(title, items) for title, items in groups if items], "others": others},
+    )
+
+
+def carry_page() -> Sheet:
+    """How to carry the manual, honest about tablets."""
+    return Sheet("how-to-carry-this-manual", "How to carry this manual", "reference", "carry.html")
+
+
+def search_page() -> Sheet:
+    """Search without a server."""
+    return Sheet("search", "Search", "reference", "search.html", listed=False)

@@ -1,0 +1,74 @@
+"""The saturation table at site pressure: what a gauge shows at each temperature."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from commission.errors import NotCalculatedError
+from commission.manual.book import Sheet
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.showing import unit_of
+from commission.quantities import Display, Kind
+
+_ZERO_C = 273.15
+_BLOCK = 26
+
+
+@dataclass(frozen=True, slots=True)
+class SaturationRow:
+    """One line of the table, numbers alone."""
+
+    t: str
+    bubble: str
+    dew: str
+    strong: bool
+
+
+def table_temperatures(low: float, high: float, display: Display) -> tuple[float, ...]:
+    """Whole degrees from −40 °C to +63 °C in the unit of the site (every 2 °F), cut to what is known; in K."""
+    if display.system == "metric":
+        wanted = [n + _ZERO_C for n in range(-40, 64)]
+    else:
+        wanted = [(n - 32) / 1.8 + _ZERO_C for n in range(-40, 148, 2)]
+    return tuple(t for t in wanted if low <= t <= high)
+
+
+def saturation_page(plant: PlantData, data: SystemData) -> Sheet:
+    """Bubble and dew gauge pressures over temperature."""
+    return Sheet(
+        data.page("saturation-table"), "Saturation table", data.group, "saturation.html",
+        {"because": None, **_context(plant, data)}, kicker=data.kicker,
+    )  # fmt: skip
+
+
+def _context(plant: PlantData, data: SystemData) -> dict[str, object]:
+    from commission.prediction import saturation_table
+    from commission.properties import refrigerant
+
+    display = plant.display
+    try:
+        fluid = refrigerant(data.system.refrigerant)
+        temperatures = table_temperatures(fluid.T_low, fluid.T_high, display)
+        table = saturation_table(fluid, plant.loaded.barometric_pressure, temperatures)
+    except NotCalculatedError as error:
+        return {"because": error.problems[0].message}
+    rows = [
+        SaturationRow(
+            display.number(row.T, Kind.TEMPERATURE, 0),
+            display.number(row.p_bubble, Kind.PRESSURE),
+            display.number(row.p_dew, Kind.PRESSURE),
+            n % 5 == 0,
+        )
+        for n, row in enumerate(table)
+    ]
+    u = fluid.pressure_relative_uncertainty
+    return {
+        "refrigerant": fluid.name,
+        "blend": fluid.is_blend,
+        "barometric": f"{plant.loaded.barometric_pressure / 100:.0f} hPa",
+        "blocks": [rows[n : n + _BLOCK] for n in range(0, len(rows), _BLOCK)],
+        "temperature_unit": unit_of(display, Kind.TEMPERATURE),
+        "pressure_unit": unit_of(display, Kind.PRESSURE),
+        "uncertainty": f"Standard uncertainty of the pressures: {100 * u:.1g} % of the absolute pressure.",
+        "source": f"{fluid.property_source}.",
+    }

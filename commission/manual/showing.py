@@ -1,0 +1,210 @@
+"""Numbers as a person reads them: an `Explained` value becomes a row with unit, band and workings."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from commission.description import Assumption
+from commission.quantities import NOMENCLATURE, Display, Explained, Input, Kind, methods, pretty
+
+COVERAGE = 2.0
+"""Bands are the expected value plus and minus this many standard uncertainties (about 95 %; JCGM 100, 6.3.3)."""
+
+_ASSUMPTION = re.compile(r"assumption (\S+)")
+
+
+@dataclass(frozen=True, slots=True)
+class ShownInput:
+    """One number that went into a calculation; `assumption` is its key where it comes from the assumption list."""
+
+    name: str
+    value: str
+    origin: str
+    assumption: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class How:
+    """The workings of a number: method, formula, source, inputs, assumptions, and where its uncertainty comes from."""
+
+    method: str
+    name: str
+    formula: str
+    source: str
+    mark: str
+    inputs: tuple[ShownInput, ...]
+    assumptions: tuple[tuple[str, str], ...]
+    parts: tuple[tuple[str, str], ...]
+    standard: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """One quantity with its number, unit and band; `because` says why there is no number."""
+
+    key: str
+    label: str
+    definition: str
+    value: str | None
+    unit: str
+    band: str
+    how: How | None
+    because: str | None = None
+
+
+def label_of(key: str) -> str:
+    """The label of a nomenclature key or of a safety figure, or the words themselves."""
+    if key in NOMENCLATURE:
+        return NOMENCLATURE[key].label
+    title = _safety_titles().get(key)
+    if title is not None:
+        return title[0][:1].upper() + title[0][1:]
+    return key.replace("_", " ")
+
+
+def kind_of(explained: Explained) -> Kind:
+    """The kind of an explained value: of the nomenclature, of a safety figure, else a plain number."""
+    if explained.quantity in NOMENCLATURE:
+        return NOMENCLATURE[explained.quantity].kind
+    title = _safety_titles().get(explained.quantity)
+    return title[1] if title is not None else Kind.NUMBER
+
+
+def _safety_titles() -> Mapping[str, tuple[str, Kind]]:
+    from commission.safety import FIGURE_TITLES
+
+    return FIGURE_TITLES
+
+
+def unit_of(display: Display, kind: Kind) -> str:
+    """The unit as printed."""
+    return pretty(display.unit_and_digits(kind)[0])
+
+
+def band_text(display: Display, kind: Kind, value: float, uncertainty: float | None) -> str:
+    """The band around an expected value, numbers alone: `2.21 to 2.41`, or how small it is."""
+    if uncertainty is None:
+        return "not stated"
+    half = COVERAGE * uncertainty
+    low, high = (display.number(value + sign * half, kind) for sign in (-1, 1))
+    if low == high:
+        digits = display.unit_and_digits(kind)[1]
+        return f"within {10.0**-digits:.{digits}f}"
+    return f"{low} to {high}"
+
+
+def spread_text(display: Display, kind: Kind, value: float) -> str:
+    """A signed change of a quantity of `kind`, such as `+0.4 K`."""
+    digits = display.unit_and_digits(kind)[1]
+    text = display.spread(value, kind, digits)
+    if float(text.replace("−", "-")) == 0:
+        text = display.spread(value, kind, digits + 1)
+    sign = "" if text.startswith("−") else "+"
+    return f"{sign}{text} {display.spread_unit(kind)}".rstrip()
+
+
+def show_input(item: Input, display: Display) -> ShownInput:
+    """One input with its unit and origin."""
+    match = _ASSUMPTION.match(item.origin)
+    return ShownInput(
+        name=label_of(item.name),
+        value=display.text(item.value, item.kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None),
+        origin=item.origin,
+        assumption=match.group(1) if match else None,
+    )
+
+
+def show_how(
+    explained: Explained,
+    display: Display,
+    assumptions: Mapping[str, Assumption],
+    parts: Mapping[str, float] | None = None,
+    kind: Kind | None = None,
+) -> How:
+    """The workings of an explained number; `kind` for a quantity outside the nomenclature.
+
+    Raises:
+        KeyError: the method is not in `methods.yaml` (a fault of the package).
+    """
+    method = methods()[explained.method]
+    kind = kind or kind_of(explained)
+    ordered = sorted((parts or {}).items(), key=lambda item: -abs(item[1]))
+    return How(
+        method=method.key,
+        name=method.name,
+        formula=method.formula,
+        source=method.source,
+        mark=method.mark,
+        inputs=tuple(show_input(i, display) for i in explained.inputs),
+        assumptions=tuple((key, assumptions[key].title if key in assumptions else key) for key in explained.assumptions),
+        parts=tuple(
+            (assumptions[cause].title if cause in assumptions else cause, spread_text(display, kind, size))
+            for cause, size in ordered
+            if size != 0 and abs(size) >= 0.05 * abs(ordered[0][1])
+        ),
+        standard=None if explained.uncertainty is None else spread_text(display, kind, explained.uncertainty)[1:],
+    )
+
+
+def show(
+    key: str,
+    explained: Explained,
+    display: Display,
+    assumptions: Mapping[str, Assumption],
+    parts: Mapping[str, float] | None = None,
+) -> Row:
+    """The row of an explained number."""
+    kind = kind_of(explained)
+    return Row(
+        key=key,
+        label=label_of(key),
+        definition=NOMENCLATURE[key].definition if key in NOMENCLATURE else "",
+        value=display.number(explained.value, kind),
+        unit=unit_of(display, kind),
+        band=band_text(display, kind, explained.value, explained.uncertainty),
+        how=show_how(explained, display, assumptions, parts),
+    )
+
+
+def not_calculated(key: str, reason: str) -> Row:
+    """The row of a number that could not be calculated, with the reason."""
+    definition = NOMENCLATURE[key].definition if key in NOMENCLATURE else ""
+    return Row(key, label_of(key), definition, None, "", "", None, because=reason)
+
+
+GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
+    (
+        "At the gauges and probes",
+        (
+            "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature",
+            "liquid_temperature", "heat_source_outlet_temperature", "heat_sink_outlet_temperature",
+        ),
+    ),
+    (
+        "As engineers think",
+        (
+            "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
+            "condensing_temperature", "condenser_temperature_difference", "subcooling", "pressure_ratio",
+            "heat_source_temperature_change", "heat_sink_temperature_change",
+        ),
+    ),
+    ("Power and current", ("power_input", "compressor_power", "fan_power", "current")),
+    (
+        "Heat and efficiency",
+        (
+            "cooling_capacity", "net_cooling_capacity", "heating_capacity", "refrigerant_flow", "cooling_cop",
+            "heating_cop", "carnot_cop", "running_share",
+        ),
+    ),
+)  # fmt: skip
+"""The order in which expected values are shown: what is read, what follows from it, what it costs, what it does."""
+
+
+def grouped(keys: Sequence[str]) -> tuple[tuple[str, tuple[str, ...]], ...]:
+    """`keys` in the groups of `GROUPS`; what no group names comes last."""
+    groups = [(title, tuple(k for k in members if k in keys)) for title, members in GROUPS]
+    known = {k for _, members in GROUPS for k in members}
+    groups.append(("Further values", tuple(k for k in keys if k not in known)))
+    return tuple((title, members) for title, members in groups if members)

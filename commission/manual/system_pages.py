@@ -1,0 +1,276 @@
+"""The pages of one system that description and prediction fill: what it is, how it should run, what is assumed."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from commission.manual.assumed import ShownAssumption, shown_assumptions
+from commission.manual.book import Sheet
+from commission.manual.documents import DocumentLink
+from commission.manual.facts import guarantees, rated_points, system_facts
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.grid import Grid, GridPoint
+from commission.manual.plots import Figure
+from commission.manual.showing import (
+    How,
+    Row,
+    band_text,
+    grouped,
+    label_of,
+    not_calculated,
+    show,
+    show_how,
+    unit_of,
+)
+from commission.quantities import NOMENCLATURE, Display, Kind
+
+
+def what_it_is(plant: PlantData, data: SystemData, documents: tuple[DocumentLink, ...]) -> Sheet:
+    """Nameplate, components, boundary, settings and documents."""
+    return Sheet(
+        data.page("what-it-is"),
+        "What it is",
+        data.group,
+        "what.html",
+        {
+            "groups": system_facts(plant.loaded, data.id, plant.display),
+            "rated": rated_points(plant.loaded, data.id, plant.display),
+            "promised": guarantees(plant.loaded, data.id, plant.display),
+            "documents": documents,
+            "assumptions_page": data.page("assumptions"),
+        },
+        kicker=data.kicker,
+    )
+
+
+def conditions_line(conditions: Mapping[str, float], display: Display) -> str:
+    """Conditions in one line of words."""
+    return ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in conditions.items() if k in NOMENCLATURE)
+
+
+def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
+    """All expected values at the rated condition, grouped; what is not calculated stands where it would be looked for."""
+    assert data.rated is not None
+    p = data.rated
+    keys = tuple(p.expected) + tuple(k for k in p.not_calculated if k not in p.expected)
+    return tuple(
+        (
+            title,
+            tuple(
+                show(k, p.expected[k], display, data.assumptions, p.parts.get(k))
+                if k in p.expected
+                else not_calculated(k, p.not_calculated[k])
+                for k in members
+            ),
+        )
+        for title, members in grouped(keys)
+    )
+
+
+GRID_KEYS = (
+    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
+    "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
+    "condensing_temperature", "condenser_temperature_difference", "subcooling", "heat_source_outlet_temperature",
+    "heat_sink_outlet_temperature", "power_input", "current", "cooling_capacity", "heating_capacity", "cooling_cop",
+    "heating_cop",
+)  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """One expected value of the grid with its band, numbers alone."""
+
+    value: str
+    band: str
+
+
+@dataclass(frozen=True, slots=True)
+class GridRow:
+    """One temperature of the grid."""
+
+    head: str
+    cells: tuple[Cell, ...]
+    because: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class ColumnInputs:
+    """The inputs of one column at each temperature."""
+
+    names: tuple[str, ...]
+    rows: tuple[tuple[str, tuple[str, ...]], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """One quantity of the grid: heading with unit, and its workings."""
+
+    key: str
+    label: str
+    head: str
+    definition: str
+    how: How
+    inputs: ColumnInputs | None
+
+
+@dataclass(frozen=True, slots=True)
+class GridTable:
+    """The grid as a table of text."""
+
+    title: str
+    unit: str
+    columns: tuple[Column, ...]
+    rows: tuple[GridRow, ...]
+
+
+def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | None:
+    """The printed grid, or None where no point could be calculated."""
+    good = [p for p in grid.points if p.prediction is not None]
+    if not good:
+        return None
+    keys = [k for k in GRID_KEYS if any(p.prediction and k in p.prediction.expected for p in good)]
+    return GridTable(
+        grid.title,
+        unit_of(display, Kind.TEMPERATURE),
+        tuple(_column(data, k, good, display) for k in keys),
+        tuple(_grid_row(p, keys, display) for p in grid.points),
+    )
+
+
+def _head(point: GridPoint, display: Display) -> str:
+    return display.number(point.temperature, Kind.TEMPERATURE, 0)
+
+
+def _grid_row(point: GridPoint, keys: list[str], display: Display) -> GridRow:
+    if point.prediction is None:
+        return GridRow(_head(point, display), tuple(Cell("", "") for _ in keys), point.because)
+    return GridRow(_head(point, display), tuple(grid_cell(point, k, display) for k in keys), None)
+
+
+def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
+    """One cell; a dash where this value is not calculated at this temperature."""
+    explained = point.prediction.expected.get(key) if point.prediction else None
+    if explained is None:
+        return Cell("–", "")
+    kind = NOMENCLATURE[key].kind
+    return Cell(display.number(explained.value, kind), band_text(display, kind, explained.value, explained.uncertainty))
+
+
+def _column(data: SystemData, key: str, good: list[GridPoint], display: Display) -> Column:
+    firsts = [p.prediction.expected[key] for p in good if p.prediction and key in p.prediction.expected]
+    how = show_how(firsts[0], display, data.assumptions)
+    quantity = NOMENCLATURE[key]
+    unit = unit_of(display, quantity.kind)
+    head = f"{quantity.label}, {unit}" if unit else quantity.label
+    bare = How(how.method, how.name, how.formula, how.source, how.mark, (), how.assumptions, (), None)
+    return Column(key, quantity.label, head, quantity.definition, bare, _column_inputs(data, key, good, display))
+
+
+def _column_inputs(data: SystemData, key: str, good: list[GridPoint], display: Display) -> ColumnInputs | None:
+    shown = [
+        (_head(p, display), show_how(p.prediction.expected[key], display, data.assumptions).inputs)
+        for p in good
+        if p.prediction and key in p.prediction.expected
+    ]
+    names = tuple(dict.fromkeys(i.name for _, inputs in shown for i in inputs))
+    if not names:
+        return None
+    rows = tuple((head, tuple({i.name: i.value for i in inputs}.get(n, "–") for n in names)) for head, inputs in shown)
+    return ColumnInputs(names, rows)
+
+
+def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure, ...], ph: Figure | None) -> Sheet:
+    """Expected readings at the rated condition and over the weather, charts and cycle."""
+    display = plant.display
+    context: dict[str, Any] = {"because": data.because}
+    if data.rated is not None:
+        grid = data.grid
+        context |= {
+            "condition": conditions_line(data.rated.conditions, display),
+            "warnings": data.rated.warnings,
+            "groups": expected_rows(data, display),
+            "charts": figures,
+            "grid_note": _grid_note(data, grid, display) if grid else "",
+            "table": grid_table(data, grid, display) if grid else None,
+            "ph": _ph_context(data, ph, display) if ph else None,
+            "assumptions_page": data.page("assumptions"),
+            "day_sheet": data.page("day-sheet"),
+        }
+    return Sheet(data.page("how-it-should-run"), "How it should run", data.group, "expected.html", context, data.kicker)
+
+
+def _grid_note(data: SystemData, grid: Grid, display: Display) -> str:
+    fixed = conditions_line(grid.fixed, display)
+    text = f"Everything else is at its rated value: {fixed}. " if fixed else ""
+    regimes = [(p.temperature, p.prediction.regime) for p in grid.points if p.prediction]
+    changes = [(t, r) for (_, before), (t, r) in zip(regimes, regimes[1:], strict=False) if r != before]
+    if changes:
+        first = regimes[0][1]
+        text += f"Below the change the plant runs with {first}"
+        text += "".join(f"; from about {display.text(t, Kind.TEMPERATURE, 0)} with {r}" for t, r in changes) + ". "
+    elif regimes:
+        text += f"Throughout with {regimes[0][1]}. "
+    return text + "The tinted bands are plus and minus two standard uncertainties of the calculation."
+
+
+def _ph_context(data: SystemData, ph: Figure, display: Display) -> dict[str, Any]:
+    assert data.rated is not None
+    p_unit = "bar absolute" if display.system == "metric" else "psia"
+    factor = 1e5 if display.system == "metric" else 6894.757293168361
+    states = [
+        {
+            "label": s.label,
+            "name": s.name,
+            "p": f"{s.p / factor:.2f}" if display.system == "metric" else f"{s.p / factor:.1f}",
+            "t": display.number(s.T, Kind.TEMPERATURE),
+            "h": display.number(s.h, Kind.SPECIFIC_ENTHALPY),
+        }
+        for s in data.rated.states
+    ]
+    return {
+        "stem": ph.stem,
+        "alt": ph.alt,
+        "states": states,
+        "pressure_unit": p_unit,
+        "temperature_unit": unit_of(display, Kind.TEMPERATURE),
+        "enthalpy_unit": unit_of(display, Kind.SPECIFIC_ENTHALPY),
+    }
+
+
+def assumptions(plant: PlantData, data: SystemData) -> Sheet:
+    """What is assumed, with its effect, and the one most worth replacing."""
+    shown = shown_assumptions(data, plant.display)
+    worst = shown[0] if shown and (shown[0].share or 0) > 0 else None
+    note = ""
+    if data.effects:
+        note = "“Moves” is the change of each expected reading when the assumption is one standard uncertainty higher, "
+        note += "at the end of the weather range furthest from the rated condition."
+    return Sheet(
+        data.page("assumptions"),
+        "Assumptions",
+        data.group,
+        "assumptions.html",
+        {
+            "assumptions": [_percent(a) for a in shown],
+            "worst": worst,
+            "worst_why": _why(worst),
+            "effect_note": note,
+        },
+        kicker=data.kicker,
+    )
+
+
+def _percent(a: ShownAssumption) -> Mapping[str, Any]:
+    share = None if a.share is None else ("under 1 %" if a.share < 0.01 else f"{a.share:.0%}".replace("%", " %"))
+    fields = ("key", "title", "value", "range", "source", "mark", "origin", "replaced_by", "effects")
+    return {f: getattr(a, f) for f in fields} | {"share": share}
+
+
+def _why(worst: ShownAssumption | None) -> str:
+    if worst is None or worst.share is None:
+        return ""
+    share = f"{worst.share:.0%}".replace("%", " %")
+    text = f"Away from the rated condition it makes about {share} of the uncertainty of the expected readings."
+    return text + (f" One standard uncertainty of it moves {', '.join(worst.effects)}." if worst.effects else "")
