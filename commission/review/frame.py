@@ -7,7 +7,7 @@ from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 
 from commission.description import LoadedPlant, Position
-from commission.errors import NotCalculatedError
+from commission.errors import CommissionError
 from commission.review.facts import PlantFacts, SystemFacts, gather, reason_of
 from commission.review.finding import SEVERITIES, Finding, Remark
 
@@ -47,7 +47,7 @@ def _run_on_plant(rule: Rule, plant: PlantFacts) -> Iterator[Finding]:
     try:
         for remark in rule.of_plant(plant):
             yield _finding(rule, remark, plant.loaded, None)
-    except NotCalculatedError as error:
+    except CommissionError as error:
         yield _finding(rule, _not_judged(rule, "plant", error), plant.loaded, None)
 
 
@@ -56,15 +56,15 @@ def _run_on_system(rule: Rule, facts: SystemFacts) -> Iterator[Finding]:
     try:
         for remark in rule.of_system(facts):
             yield _finding(rule, remark, facts.plant.loaded, facts.id)
-    except NotCalculatedError as error:
+    except CommissionError as error:
         yield _finding(rule, _not_judged(rule, facts.path(), error), facts.plant.loaded, facts.id)
 
 
-def _not_judged(rule: Rule, path: str, error: NotCalculatedError) -> Remark:
+def _not_judged(rule: Rule, path: str, error: CommissionError) -> Remark:
     return Remark(
         "note",
         path,
-        f"Not judged: {rule.name}. Not calculated: because {reason_of(error)}",
+        f"Not judged: {rule.name}: because {reason_of(error)}",
         (),
         "Judge this by hand, or write the facts that are missing.",
     )

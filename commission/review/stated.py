@@ -6,7 +6,7 @@ import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from commission.description.model import CondensingUnitPoint, Conditions, Medium
+from commission.description.model import CondensingUnitPoint, Conditions, Medium, RatedPoint
 from commission.errors import NotCalculatedError
 from commission.quantities import Explained, Input, Kind
 from commission.review.facts import SystemFacts
@@ -38,18 +38,12 @@ def entropic_mean(inlet: float, outlet: float) -> float:
 def stated_cops(facts: SystemFacts) -> Iterator[StatedCop]:
     """Every COP that rated points, the condensing unit's table and guarantees state."""
     for index, point in facts.rated_points():
-        for capacity, quantity in ((point.cooling_capacity, "cooling_cop"), (point.heating_capacity, "heating_cop")):
-            if capacity is not None and point.power_input:
-                heat = (point.cooling_capacity, point.heating_capacity)
-                yield from _between_media(
-                    facts,
-                    facts.path("rated_points", index),
-                    f"Rated point {index + 1}",
-                    quantity,
-                    capacity / point.power_input,
-                    point,
-                    heat,
-                )
+        path, name = facts.path("rated_points", index), f"Rated point {index + 1}"
+        heat = (point.cooling_capacity, point.heating_capacity)
+        for quantity in ("cooling_cop", "heating_cop"):
+            cop = cop_of(point, quantity)
+            if cop is not None:
+                yield from _between_media(facts, path, name, quantity, cop, point, heat)
     unit = facts.system.condensing_unit
     for index, row in enumerate(unit.rated_points if unit else ()):
         yield from _of_condensing_unit(facts, index, row)
@@ -59,6 +53,15 @@ def stated_cops(facts: SystemFacts) -> Iterator[StatedCop]:
             name = f"Guarantee {index + 1}"
             value = guarantee.value_si
             yield from _between_media(facts, path, name, guarantee.quantity, value, guarantee.at, (None, None))
+
+
+def cop_of(point: RatedPoint, quantity: str) -> float | None:
+    """The COP that a rated point states, or that follows from its capacity and power; None where neither is there."""
+    stated: float | None = getattr(point, quantity)
+    if stated is not None:
+        return stated
+    capacity: float | None = getattr(point, quantity.replace("_cop", "_capacity"))
+    return capacity / point.power_input if capacity is not None and point.power_input else None
 
 
 def _between_media(
@@ -118,10 +121,10 @@ def stream_mean(facts: SystemFacts, side: str, at: Conditions, heat: float | Non
 
 def _liquid_change(medium: Medium, flow: float | None, heat: float | None, temperature: float) -> float | None:
     """Temperature change in K of a liquid stream, None for air or where flow or heat is not known."""
-    from commission.properties import liquid
-
     if medium.medium == "air" or not flow or heat is None:
         return None
+    from commission.properties import liquid
+
     stream = liquid(medium.medium, medium.mass_fraction or 0.0)
     return heat / (flow * stream.density(temperature) * stream.specific_heat(temperature))
 

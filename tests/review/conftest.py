@@ -53,6 +53,14 @@ systems:
 """
 
 
+class Plain(yaml.SafeDumper):
+    """Writes a part that is used twice in full, as a person would."""
+
+    def ignore_aliases(self, data: Any) -> bool:
+        """No anchors: the reader refuses them."""
+        return True
+
+
 def merge(base: Any, change: Any) -> Any:
     """`change` laid over `base`: mappings are merged, None takes a key away, all else replaces."""
     if not isinstance(base, dict) or not isinstance(change, dict):
@@ -71,7 +79,7 @@ def make_plant(tmp_path: Path) -> Callable[..., LoadedPlant]:
     def make(system: dict[str, Any] | None = None, **parts: Any) -> LoadedPlant:
         base = yaml.load(BASE, Loader=yaml.BaseLoader)
         data = merge(base, {**parts, "systems": {"one": system or {}}})
-        text = yaml.safe_dump(data, allow_unicode=True, sort_keys=False)
+        text = yaml.dump(data, allow_unicode=True, sort_keys=False, Dumper=Plain)
         (tmp_path / "plant.yaml").write_text(text, encoding="utf-8")
         return load_plant(tmp_path)
 

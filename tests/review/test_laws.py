@@ -134,16 +134,6 @@ def test_media_must_change_the_right_way(facts: Facts) -> None:
     assert not list(media.wrong_way(facts({"design": right})))
 
 
-def test_wet_bulb_and_humidity(facts: Facts) -> None:
-    """A wet bulb above the dry bulb and 110 % humidity are errors; at or below they are not."""
-    design = {"heat_source_wet_bulb": "5 °C", "heat_sink_relative_humidity": "110 %"}
-    found = list(media.wet_bulb_over_dry(facts({"design": design})))
-    assert [remark.severity for remark in found] == ["error", "error"]
-    assert figure(found[0], "Heat source wet bulb").text == "5.0 °C"
-    fine = {"heat_source_wet_bulb": "3 °C", "heat_sink_relative_humidity": "40 %"}
-    assert not list(media.wet_bulb_over_dry(facts({"design": fine})))
-
-
 @pytest.mark.parametrize(("evaporating", "fires"), [("5 °C", True), ("-4 °C", False)])
 def test_evaporating_must_be_colder_than_the_source(facts: Facts, evaporating: str, fires: bool) -> None:
     """Air of 4 °C cannot boil a refrigerant at 5 °C."""

@@ -17,6 +17,8 @@ def charge_over_limit(facts: SystemFacts) -> Iterator[Remark]:
     Source: the charge limits of the safety room, each with its document and mark; most are from memory, so this is a
     warning that sends the reader to the document.
     """
+    from commission.safety import MARKS
+
     for space in facts.spaces:
         lowest = space.lowest
         if not space.over or lowest is None or lowest.value is None or space.charge is None:
@@ -32,7 +34,7 @@ def charge_over_limit(facts: SystemFacts) -> Iterator[Remark]:
             ),
             f"Less charge, a larger or ventilated room, or measures that the document names: {space.advice}.",
             f"{lowest.document}, {lowest.edition}" if lowest.edition else lowest.document,
-            lowest.mark,
+            MARKS[lowest.mark],
         )
 
 
@@ -42,7 +44,7 @@ def law_dates(facts: SystemFacts) -> Iterator[Remark]:
     Source: `market_dates.yaml`. With a day of the visit, dates that have passed are warnings; all others are notes.
     A plant that stands already may go on.
     """
-    from commission.safety import substance_of
+    from commission.safety import MARKS, substance_of
 
     law = facts.plant.loaded.plant.plant.rules.refrigerant_law
     gwp = substance_of(facts.refrigerant).gwp if facts.refrigerant else None
@@ -66,7 +68,7 @@ def law_dates(facts: SystemFacts) -> Iterator[Remark]:
             ),
             "A plant that stands may go on; think of it before buying a second one. Confirm with the law in force.",
             f"{entry['document']}; GWP: {gwp.source}",
-            entry["mark"],
+            MARKS[entry["mark"]],
         )
 
 

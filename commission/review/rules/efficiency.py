@@ -67,7 +67,8 @@ def implied_volumetric(facts: SystemFacts) -> Iterator[Remark]:
     if compressor.displacement is None or compressor.drive == "variable speed":
         return
     for duty in duties(facts):
-        ends = [_volumetric(facts, duty, condensing, compressor.displacement) for condensing in duty.lift]
+        swept = compressor.displacement * compressor.count
+        ends = [_volumetric(facts, duty, condensing, swept) for condensing in duty.lift]
         low, high = sorted(ends, key=lambda end: end.value)
         yield from _judge(facts, "volumetric_efficiency", (low.value, high.value), duty.path, duty.name, (low, high))
 
@@ -117,45 +118,60 @@ def explained_or_plain(
 
 def duties(facts: SystemFacts) -> Iterator[Duty]:
     """Every stated point that says enough of the compressor's two pressures."""
-    assumed = facts.plant.loaded.assumptions(facts.id)
+    yield from _of_condensing_unit(facts)
+    yield from _of_rated_points(facts)
+
+
+def _of_condensing_unit(facts: SystemFacts) -> Iterator[Duty]:
     unit = facts.system.condensing_unit
-    if unit is not None:
-        pull = assumed["condensing_minus_sink_inlet"]
-        for index, row in enumerate(unit.rated_points):
-            ambient = row.heat_sink_inlet_temperature
-            superheat = unit.suction_superheat or 0.0
-            if unit.suction_temperature is not None:
-                superheat = max(0.0, unit.suction_temperature - row.evaporating_temperature)
-            path = facts.path("condensing_unit", "rated_points", index)
-            yield Duty(
-                path,
-                f"Row {index + 1} of the condensing unit's table",
-                row.evaporating_temperature,
-                (ambient + pull.low, ambient + pull.high),
-                superheat,
-                unit.liquid_subcooling or 0.0,
-                row.cooling_capacity,
-                _compressor_power(facts, row.power_input, unit.includes),
-                path,
-            )
-    superheat = assumed["evaporator_superheat"].value + assumed["suction_line_superheat"].value
+    lift = facts.plant.loaded.assumptions(facts.id).get("condensing_minus_sink_inlet")
+    if unit is None or lift is None:
+        return
+    for index, row in enumerate(unit.rated_points):
+        superheat = _stated_or_assumed(facts, unit.suction_superheat, "rating_superheat")
+        if unit.suction_temperature is not None:
+            superheat = max(0.0, unit.suction_temperature - row.evaporating_temperature)
+        path = facts.path("condensing_unit", "rated_points", index)
+        yield Duty(
+            path,
+            f"Row {index + 1} of the condensing unit's table",
+            row.evaporating_temperature,
+            (row.heat_sink_inlet_temperature + lift.low, row.heat_sink_inlet_temperature + lift.high),
+            superheat,
+            _stated_or_assumed(facts, unit.liquid_subcooling, "rating_subcooling"),
+            row.cooling_capacity,
+            _compressor_power(facts, row.power_input, unit.includes),
+            path,
+        )
+
+
+def _of_rated_points(facts: SystemFacts) -> Iterator[Duty]:
+    expansion = facts.system.expansion
     for index, point in facts.rated_points():
         evaporating, condensing = point.evaporating_temperature, point.condensing_temperature
         if evaporating is None or condensing is None or point.cooling_capacity is None:
             continue
         path = facts.path("rated_points", index)
-        power = _compressor_power(facts, point.power_input, point.includes) if point.power_input else None
+        held = _stated_or_assumed(facts, expansion.superheat if expansion else None, "evaporator_superheat")
         yield Duty(
             path,
             f"Rated point {index + 1}",
             evaporating,
             (condensing, condensing),
-            superheat,
-            assumed["liquid_subcooling"].value,
+            held + _stated_or_assumed(facts, None, "suction_line_superheat"),
+            _stated_or_assumed(facts, None, "liquid_subcooling"),
             point.cooling_capacity,
-            power,
+            _compressor_power(facts, point.power_input, point.includes) if point.power_input else None,
             path,
         )
+
+
+def _stated_or_assumed(facts: SystemFacts, stated: float | None, key: str) -> float:
+    """What is written, else the assumption list's value, else nothing (0 K)."""
+    if stated is not None:
+        return stated
+    assumption = facts.plant.loaded.assumptions(facts.id).get(key)
+    return assumption.value if assumption is not None else 0.0
 
 
 def _compressor_power(facts: SystemFacts, power: float, includes: tuple[str, ...] | None) -> tuple[float, float]:

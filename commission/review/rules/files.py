@@ -13,9 +13,9 @@ def changed_records(plant: PlantFacts) -> Iterator[Remark]:
 
     Source: the list of digests beside the records (SHA256SUMS). It detects accident, not fraud.
     """
-    from commission.records import check
+    from commission.records.sums import compare_sums
 
-    for found in check(plant.loaded):
+    for found in compare_sums(plant.loaded.folder / "records"):
         figures = [Figure("digest listed", found.listed)] if found.listed else []
         figures += [Figure("digest found", found.found)] if found.found else []
         yield Remark(

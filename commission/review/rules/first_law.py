@@ -66,8 +66,6 @@ def medium_balance(facts: SystemFacts) -> Iterator[Remark]:
 
     Source: first law on the stream, Q = V rho c (T_in - T_out), with density and heat capacity at the mean temperature.
     """
-    from commission.properties import liquid
-
     for index, point in facts.rated_points():
         for side, medium, key in (
             ("source", facts.system.heat_source, "cooling_capacity"),
@@ -79,6 +77,8 @@ def medium_balance(facts: SystemFacts) -> Iterator[Remark]:
             flow = getattr(point, f"heat_{side}_flow") or medium.flow
             if medium.medium == "air" or None in (stated, inlet, outlet, flow):
                 continue
+            from commission.properties import liquid
+
             stream = liquid(medium.medium, medium.mass_fraction or 0.0)
             mean = (inlet + outlet) / 2
             carried = flow * stream.density(mean) * stream.specific_heat(mean) * abs(inlet - outlet)

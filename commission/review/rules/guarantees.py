@@ -9,6 +9,7 @@ from commission.errors import CommissionError
 from commission.quantities import NOMENCLATURE, Explained, Kind
 from commission.review.facts import SystemFacts, conditions_of, explained_figure, reason_of
 from commission.review.finding import Figure, Remark
+from commission.review.stated import cop_of
 
 AT_MOST = ("power_input",)
 
@@ -30,7 +31,7 @@ def not_the_table(facts: SystemFacts) -> Iterator[Remark]:
         yield Remark(
             "warning" if better else "note",
             facts.path("guarantee", index, "value"),
-            f"Guarantee {index + 1} of {facts.title} is {'better' if better else 'more modest'} than the supplier's table.",
+            f"Guarantee {index + 1} of {facts.title} is {'above' if value > stated else 'below'} the supplier's table.",
             (
                 facts.plant.quantity(guarantee.quantity, value, "guaranteed"),
                 facts.plant.quantity(guarantee.quantity, stated, "supplier's table at the same condition"),
@@ -88,11 +89,13 @@ def _agrees(facts: SystemFacts, at: Mapping[str, float], row: Mapping[str, float
 def _result(point: RatedPoint, quantity: str) -> float | None:
     """A result of a rated point, or the COP that follows from its capacity and power."""
     if quantity.endswith("_cop"):
-        capacity = getattr(point, quantity.replace("_cop", "_capacity"))
-        power = point.power_input
-        return capacity / power if capacity is not None and power else None
-    value = getattr(point, quantity)
-    return None if value is None else float(value)
+        return cop_of(point, quantity)
+    if quantity == "net_cooling_capacity":
+        return point.cooling_capacity if point.capacity_is == "net" else None
+    if quantity == "cooling_capacity" and point.capacity_is == "net":
+        return None
+    value: float | None = getattr(point, quantity)
+    return value
 
 
 def beyond_expectation(facts: SystemFacts) -> Iterator[Remark]:

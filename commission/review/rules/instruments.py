@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from commission.description.instruments import ResolvedInstrument
+from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Explained, Kind, Reference
 from commission.review.facts import SystemFacts, explained_figure
 from commission.review.finding import Figure, Remark
@@ -157,15 +158,16 @@ def too_coarse_for_superheat(facts: SystemFacts) -> Iterator[Remark]:
 
 def _expanded(facts: SystemFacts, key: str, value: float) -> list[tuple[float, str]]:
     """Expanded uncertainty (95 %) in SI of each instrument that can show this value, with its id."""
-    from commission.acceptance import instrument_budget
+    from commission.acceptance.instruments import instrument_budget
 
     instruments = facts.plant.loaded.plant.instruments
     found = []
     for scale in scales(facts, key):
         if scale.low <= value <= scale.high:
-            budget = instrument_budget(
-                instruments[scale.id], key, value, facts.plant.loaded.barometric_pressure, on=facts.plant.visit
-            )
-            if budget.components:
-                found.append((budget.expanded(), scale.id))
+            barometric = facts.plant.loaded.barometric_pressure
+            try:
+                budget = instrument_budget(instruments[scale.id], key, value, barometric, on=facts.plant.visit)
+            except NotCalculatedError:
+                continue  # nothing is stated of its accuracy, so it cannot be the one that decides
+            found.append((budget.expanded(), scale.id))
     return found

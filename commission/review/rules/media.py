@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from commission.description.model import Conditions
-from commission.quantities import Kind
 from commission.review.facts import SystemFacts
 from commission.review.finding import Remark
 
@@ -44,35 +43,3 @@ def wrong_way(facts: SystemFacts) -> Iterator[Remark]:
                 ),
                 "Check whether inlet and outlet, or source and sink, are exchanged.",
             )
-
-
-def wet_bulb_over_dry(facts: SystemFacts) -> Iterator[Remark]:
-    """A wet bulb above the dry bulb, or a relative humidity above 100 %.
-
-    Source: definition of the wet bulb; both meet at saturation.
-    """
-    for path, name, at in stated_conditions(facts):
-        for side in ("source", "sink"):
-            dry = getattr(at, f"heat_{side}_inlet_temperature")
-            wet = getattr(at, f"heat_{side}_wet_bulb")
-            humidity = getattr(at, f"heat_{side}_relative_humidity")
-            plant = facts.plant
-            if dry is not None and wet is not None and wet > dry:
-                yield Remark(
-                    "error",
-                    path,
-                    f"{name} of {facts.title}: the wet bulb is above the dry bulb.",
-                    (
-                        plant.quantity(f"heat_{side}_inlet_temperature", dry),
-                        plant.quantity(f"heat_{side}_wet_bulb", wet),
-                    ),
-                    "Check whether the two are exchanged.",
-                )
-            if humidity is not None and humidity > 1:
-                yield Remark(
-                    "error",
-                    path,
-                    f"{name} of {facts.title}: air holds no more water than at 100 % relative humidity.",
-                    (plant.figure("relative humidity", humidity, Kind.RATIO),),
-                    "Check the figure.",
-                )

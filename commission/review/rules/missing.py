@@ -118,12 +118,14 @@ def _facts(number: int) -> str:
 
 
 def winter_heat(facts: SystemFacts) -> Iterator[Remark]:
-    """A heating system on outdoor air whose design condition is warmer than the coldest day of the site.
+    """A heating system on outdoor air, without a back-up, whose design condition is warmer than the coldest day.
 
     Source: capacity falls with the temperature of the source; what heats on the coldest day must be known.
     """
     winter = facts.plant.loaded.plant.plant.climate.winter_dry_bulb
     if facts.system.duty != "space_heating" or facts.system.heat_source.medium != "air" or winter is None:
+        return
+    if facts.system.back_up is not None:
         return
     design = facts.system.design.heat_source_inlet_temperature if facts.system.design else None
     if design is not None and design <= winter:
@@ -138,7 +140,7 @@ def winter_heat(facts: SystemFacts) -> Iterator[Remark]:
     yield Remark(
         "warning",
         facts.path("design") if facts.system.design else facts.path(),
-        f"{facts.title} is not designed down to the coldest day of the site, and no back-up is known.",
+        f"{facts.title} is not designed down to the coldest day of the site, and no back-up is written.",
         tuple(figures),
-        "Find out the heat demand on the coldest day and what covers the rest; write the design condition down to it.",
+        "Find out the heat demand on the coldest day and what covers the rest; write it under back_up.",
     )
