@@ -158,7 +158,9 @@ def combined_variance(
 ) -> float:
     """Variance of a sum of correlated inputs with any correlation coefficients (JCGM 100, equation 16)."""
     terms = [c * u for c, u in zip(sensitivities, uncertainties, strict=True)]
-    return math.fsum(a * b * r for a, row in zip(terms, correlation, strict=True) for b, r in zip(terms, row, strict=True))
+    return math.fsum(
+        a * b * r for a, row in zip(terms, correlation, strict=True) for b, r in zip(terms, row, strict=True)
+    )
 
 
 def repeated_means(columns: Sequence[Sequence[float]]) -> tuple[list[float], list[float], list[list[float]]]:

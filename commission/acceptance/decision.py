@@ -135,7 +135,9 @@ def _check(value: float, u: float, lower: float | None, upper: float | None, con
     if lower is None and upper is None:
         raise ValueError("without a limit there is nothing to decide")
     if not all(math.isfinite(x) for x in (value, u, lower or 0.0, upper or 0.0)) or u < 0.0:
-        raise ValueError(f"finite numbers and an uncertainty of zero or more are wanted: {value}, {u}, {lower}, {upper}")
+        raise ValueError(
+            f"finite numbers and an uncertainty of zero or more are wanted: {value}, {u}, {lower}, {upper}"
+        )
     if lower is not None and upper is not None and lower > upper:
         raise ValueError(f"the lower limit {lower:g} lies above the upper limit {upper:g}")
     if not 0.5 < confidence < 1.0:

@@ -1,0 +1,139 @@
+"""Before the visit: on the forecast day, with these instruments, what can be decided, and what would have to change."""
+
+from __future__ import annotations
+
+import datetime as dt
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.acceptance.budget import Budget, Measured
+from commission.acceptance.changes import Change, smallest_change
+from commission.acceptance.choosing import choose_instrument
+from commission.acceptance.decision import Decision
+from commission.acceptance.evaluation import Evaluation, evaluate
+from commission.acceptance.guarantee import Terms, carry, terms_of
+from commission.acceptance.instruments import Reading
+from commission.acceptance.judgement import GuaranteeVerdict, verdict
+from commission.acceptance.routes import Refusal
+from commission.quantities import NOMENCLATURE, Explained
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
+
+NEVER_READ = ("carnot_cop", "refrigerant_flow", "net_cooling_capacity", "fan_power")
+"""Expected values that nobody reads on site with ordinary instruments."""
+
+
+@dataclass(frozen=True, slots=True)
+class ReadingCapability:
+    """One quantity that will be read: what is expected, with which instrument, and which deviation would be seen.
+
+    `budget` is that of reading minus expectation; a deviation larger than `detectable` (its expanded uncertainty, 95 %)
+    is significant.
+    """
+
+    key: str
+    expected: Explained
+    instrument: str | None
+    budget: Budget
+    detectable: float
+
+
+@dataclass(frozen=True, slots=True)
+class GuaranteeCapability:
+    """One guarantee: could it be decided if the plant read as expected, and if not, what would decide it.
+
+    `decided` is about a plant that reads exactly what the design model expects. `margin` is the distance of that reading
+    from the limit, `detectable` the one-sided expanded uncertainty: a margin above it is decided under either rule.
+    `change` is the smallest change of the test that would decide it, None where none is needed or none would do.
+    """
+
+    terms: Terms
+    verdict: GuaranteeVerdict
+    decided: bool
+    change: Change | None
+
+    @property
+    def decision(self) -> Decision | None:
+        """The decision that such a reading would get."""
+        return self.verdict.decision
+
+
+@dataclass(frozen=True)
+class Capability:
+    """What the instruments of the plant can prove on a forecast day."""
+
+    conditions: Mapping[str, Measured]
+    readings: tuple[ReadingCapability, ...]
+    guarantees: tuple[GuaranteeCapability, ...]
+    refusals: tuple[Refusal, ...]
+    not_read: Mapping[str, str]
+    warnings: tuple[str, ...]
+
+
+def capability(
+    loaded: LoadedPlant,
+    model: SystemModel,
+    forecast: Mapping[str, float] | None = None,
+    *,
+    on: dt.date | None = None,
+    without_instrument: str = "left out",
+) -> Capability:
+    """Work through a visit whose readings are exactly what is expected at the forecast condition (keys, SI).
+
+    The instruments are those of `measured_with`, or else the best of the plant for each quantity. What no instrument
+    of the plant can read is left out and listed.
+
+    Raises:
+        InputError: a condition that this system does not have.
+        NotCalculatedError: the model has no solution at the forecast.
+    """
+    prediction = model.predict(forecast)
+    conditions, lacking = _readings(loaded, model, prediction.conditions, without_instrument)
+    expected = {k: e.value for k, e in prediction.expected.items() if k not in NEVER_READ}
+    direct, unread = _readings(loaded, model, expected, without_instrument)
+    found = evaluate(loaded, model, _with_inlets(conditions, prediction.conditions, model), direct, on=on)
+    instruments = {r.key: r.instrument for r in (*conditions, *direct)}
+    rows = tuple(
+        ReadingCapability(d.key, d.expected.explained, instruments.get(d.key), d.budget, d.budget.expanded())
+        for d in found.deviations
+    )
+    seen = {r.key for r in rows}
+    not_read = {k: why for k, why in {**lacking, **unread}.items() if k not in seen}
+    guarantees = tuple(_guarantee(loaded, model, terms_of(g), found) for g in loaded.system(model.system_id).guarantee)
+    return Capability(found.conditions, rows, guarantees, found.refusals, not_read, found.warnings)
+
+
+def _readings(
+    loaded: LoadedPlant, model: SystemModel, values: Mapping[str, float], why: str
+) -> tuple[list[Reading], dict[str, str]]:
+    """A reading for each value that an instrument of the plant can take, and the rest."""
+    system, instruments = loaded.system(model.system_id), loaded.plant.instruments
+    found, lacking = [], {}
+    for key, value in values.items():
+        name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
+        if name is None:
+            lacking[key] = f"no instrument of the plant reads {NOMENCLATURE[key].label.lower()}: {why}"
+        else:
+            found.append(Reading(key, value, name))
+    return found, lacking
+
+
+def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model: SystemModel) -> list[Reading]:
+    """The inlet temperatures are always read: without an instrument of the plant with an assumed one, which is warned of."""
+    have = {r.key for r in readings}
+    more = [k for k in model.condition_axes if k.endswith("inlet_temperature") and k not in have]
+    return [*readings, *(Reading(k, conditions[k]) for k in more)]
+
+
+def _guarantee(loaded: LoadedPlant, model: SystemModel, terms: Terms, found: Evaluation) -> GuaranteeCapability:
+    points = loaded.system(model.system_id).rated_points
+    judged = verdict(terms, found, lambda: carry(terms, found.conditions, model, points))
+    decided = judged.outcome != "undecided"
+    change = None
+    if not decided and judged.decision is not None and judged.budget is not None:
+        needed = judged.decision.uncertainty_needed
+        change = smallest_change(judged.budget, needed, judged.decision.confidence) if needed else None
+    return GuaranteeCapability(terms, judged, decided, change)

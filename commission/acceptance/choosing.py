@@ -1,0 +1,46 @@
+"""Which instrument of the plant will read a quantity, where the description does not say: for the page before the visit."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+
+from commission.acceptance.instruments import instrument_budget
+from commission.description.model import Instrument
+from commission.errors import NotCalculatedError
+from commission.quantities import NOMENCLATURE, Kind, Reference
+
+PIPE_TEMPERATURES = ("suction_temperature", "discharge_temperature", "liquid_temperature")
+
+
+def choose_instrument(
+    key: str, value: float, instruments: Mapping[str, Instrument], measured_with: Mapping[str, str], barometric: float
+) -> str | None:
+    """Id of the instrument for a quantity expected at `value` (SI): as named in `measured_with`, or else the best fit.
+
+    Best: it measures this kind of quantity, its scale holds the value, a clamped-on probe for pipes and a free one for
+    media, and of those the one with the smallest uncertainty there. None where no instrument fits.
+    """
+    if key in measured_with:
+        return measured_with[key]
+    fits = list(_fits(key, value, instruments, barometric))
+    return min(fits)[2] if fits else None
+
+
+def _fits(
+    key: str, value: float, instruments: Mapping[str, Instrument], barometric: float
+) -> Iterator[tuple[bool, float, str]]:
+    pipe = key in PIPE_TEMPERATURES
+    for name, instrument in instruments.items():
+        resolved = instrument.resolved
+        if resolved.kind is not NOMENCLATURE[key].kind or instrument.measures == "vacuum":
+            continue
+        counted = value - barometric if resolved.reference is Reference.GAUGE else value
+        low, high = resolved.range_low, resolved.range_high
+        if low is not None and high is not None and not low <= counted <= high:
+            continue
+        try:
+            standard = instrument_budget(instrument, key, value, barometric, name=name).standard
+        except NotCalculatedError:
+            continue
+        wrong_place = resolved.kind is Kind.TEMPERATURE and instrument.clamped_on != pipe
+        yield wrong_place, standard, name

@@ -1,0 +1,272 @@
+"""One visit worked through: readings, derived readings, routes, expectations, deviations, contradictions. No verdict."""
+
+from __future__ import annotations
+
+import datetime as dt
+from collections.abc import Collection, Iterable, Iterator, Mapping
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+from commission.acceptance.budget import Measured
+from commission.acceptance.derived import Derived, derive, line_loss, ratio
+from commission.acceptance.expectation import Deviation, Expectation, deviation, expect, model_budget
+from commission.acceptance.impossible import Impossible, impossible
+from commission.acceptance.instruments import Reading, measure
+from commission.acceptance.routes import (
+    SHELL,
+    Refusal,
+    RouteResult,
+    air_side,
+    compressor_heat_balance,
+    compressor_power,
+    liquid_side,
+    shell_share,
+)
+from commission.errors import NotCalculatedError
+from commission.quantities import NOMENCLATURE
+
+if TYPE_CHECKING:
+    from commission.acceptance.sheet import TestSheet
+    from commission.description import LoadedPlant
+    from commission.prediction import Prediction, SystemModel
+
+BEST_FIRST = ("liquid side", "compressor heat balance", "air side")
+"""Routes to a capacity in the order in which they are taken where the contract names none: most certain first."""
+
+
+@dataclass(frozen=True)
+class Evaluation:
+    """Everything that follows from the readings of one visit before any verdict. Mappings by nomenclature key.
+
+    `conditions` are those at which the model was asked; `measured` the readings with their budgets; `derived` what was
+    calculated from them, capacities and COPs by the best route included; `routes` all routes that could be used,
+    `refusals` those that could not; `not_judged` gives the reason for each reading that has no deviation.
+    """
+
+    conditions: Mapping[str, Measured]
+    measured: Mapping[str, Measured]
+    derived: Mapping[str, Derived]
+    routes: tuple[RouteResult, ...]
+    refusals: tuple[Refusal, ...]
+    expectations: Mapping[str, Expectation]
+    deviations: tuple[Deviation, ...]
+    impossible: tuple[Impossible, ...]
+    not_judged: Mapping[str, str]
+    warnings: tuple[str, ...]
+    prediction: Prediction | None = field(default=None, compare=False)
+
+    def capacity(self, key: str, route: str | None = None) -> RouteResult:
+        """A capacity by the route that the contract names, or by the best that could be used.
+
+        Raises:
+            NotCalculatedError: no such route could be used; the message holds the reasons.
+        """
+        for wanted in (route,) if route else BEST_FIRST:
+            for found in self.routes:
+                if found.route == wanted and found.measured.key == key:
+                    return found
+        reasons = [r for r in self.refusals if r.key == key and route in (None, r.route)]
+        said = "; ".join(f"{r.route}: {r.reason}" for r in reasons) or f"{route} does not give it"
+        raise NotCalculatedError(said)
+
+    def quantity(self, key: str, route: str | None = None) -> tuple[Measured, str]:
+        """A guaranteed quantity as measured, and the route it was measured by.
+
+        Raises:
+            NotCalculatedError: it was not read, or no route could be used.
+        """
+        if key == "power_input":
+            if key not in self.measured:
+                raise NotCalculatedError("it needs a reading of power input")
+            return self.measured[key], "electric meter"
+        if key in ("cooling_cop", "heating_cop"):
+            capacity = self.capacity(key.replace("cop", "capacity"), None if route == "electric meter" else route)
+            if "power_input" not in self.measured:
+                raise NotCalculatedError("it needs a reading of power input")
+            return ratio(key, capacity.measured, self.measured["power_input"]).measured, capacity.route
+        found = self.capacity(key, route)
+        return found.measured, found.route
+
+
+def evaluate(
+    loaded: LoadedPlant,
+    model: SystemModel,
+    conditions: Iterable[Reading],
+    readings: Iterable[Reading],
+    *,
+    on: dt.date | None = None,
+    sheet: TestSheet | None = None,
+    upsets: Collection[str] = (),
+) -> Evaluation:
+    """Work through the readings of one visit.
+
+    Pressures are absolute, gauge readings already turned with the barometric pressure that was read, or else that of the
+    site. With a `sheet`, expectations are the frozen ones. `upsets` names what makes the compressor heat balance wrong.
+    """
+    not_judged: dict[str, str] = {}
+    asked, read = list(conditions), list(readings)
+    measured = _measure_all(loaded, [*asked, *read], on, not_judged)
+    used = {k: measured[k] for k in model.condition_axes if k in measured}
+    warnings = list(dict.fromkeys(w for m in measured.values() for w in m.budget.warnings))
+    prediction, why = _predict(model, used)
+    if prediction is not None:
+        warnings += prediction.warnings
+        warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
+    shell = _shell(loaded, model)
+    derived = dict(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
+    have = {**measured, **{k: d.measured for k, d in derived.items()}}
+    routes, refusals = _routes(loaded, model, have, prediction, shell, upsets)
+    derived.update(_capacities(routes, have))
+    have.update({k: d.measured for k, d in derived.items()})
+    expectations = _expectations(model, used, sheet, prediction, why, not_judged)
+    deviations = tuple(
+        deviation(have[k], expectations[k]) for k in NOMENCLATURE if k in have and k in expectations and k not in used
+    )
+    for key in have:
+        if key not in expectations and key not in used and key not in not_judged and key != "barometric_pressure":
+            not_judged[key] = (
+                why or (prediction.not_calculated.get(key) if prediction else None) or "nothing is expected of it"
+            )
+    return Evaluation(
+        used, measured, derived, tuple(routes), tuple(refusals), expectations, deviations,
+        impossible(model.refrigerant, _independent(have, routes), shell), not_judged, tuple(dict.fromkeys(warnings)),
+        prediction,
+    )  # fmt: skip
+
+
+def _measure_all(
+    loaded: LoadedPlant, readings: list[Reading], on: dt.date | None, not_judged: dict[str, str]
+) -> dict[str, Measured]:
+    """Every reading with its budget; a barometer that was read narrows all gauges."""
+    instruments, site = loaded.plant.instruments, loaded.barometric_pressure
+    air = next((r for r in readings if r.key == "barometric_pressure"), None)
+    standard = None
+    if air is not None:
+        try:
+            standard = measure(air, instruments, 0.0, on).budget.standard
+        except NotCalculatedError:
+            standard = None
+    found: dict[str, Measured] = {}
+    for reading in readings:
+        try:
+            found[reading.key] = measure(reading, instruments, air.value if air else site, on, standard)
+        except NotCalculatedError as error:
+            not_judged[reading.key] = str(error)
+    return found
+
+
+def _predict(model: SystemModel, used: Mapping[str, Measured]) -> tuple[Prediction | None, str | None]:
+    """The prediction at the measured condition, or why there is none."""
+    for key in model.condition_axes:
+        if key.endswith("inlet_temperature") and key not in used:
+            return None, f"{NOMENCLATURE[key].label.lower()} was not read: without it nothing can be expected"
+    try:
+        return model.predict({k: m.value for k, m in used.items()}), None
+    except NotCalculatedError as error:
+        return None, str(error)
+
+
+def _expectations(
+    model: SystemModel,
+    used: Mapping[str, Measured],
+    sheet: TestSheet | None,
+    prediction: Prediction | None,
+    why: str | None,
+    not_judged: dict[str, str],
+) -> Mapping[str, Expectation]:
+    if sheet is not None:
+        found, reasons = sheet.expectations(used)
+        not_judged.update(reasons)
+        return found
+    if prediction is None or why:
+        return {}
+    return expect(model, used)
+
+
+def _safely(make: object, not_judged: dict[str, str]) -> Mapping[str, Derived]:
+    assert callable(make)
+    try:
+        found: Mapping[str, Derived] = make()
+    except NotCalculatedError as error:
+        for key in ("compressor_superheat", "subcooling"):
+            not_judged[key] = str(error)
+        return {}
+    return found
+
+
+def _shell(loaded: LoadedPlant, model: SystemModel) -> Measured:
+    found = model.assumptions.get(SHELL) or loaded.assumptions(model.system_id).get(SHELL)
+    return shell_share(found.value, found.standard_uncertainty, found.source) if found else shell_share()
+
+
+def _routes(
+    loaded: LoadedPlant,
+    model: SystemModel,
+    have: Mapping[str, Measured],
+    prediction: Prediction | None,
+    shell: Measured,
+    upsets: Collection[str],
+) -> tuple[list[RouteResult], list[Refusal]]:
+    """Every route to every capacity: what it gives, or why it is refused."""
+    system = loaded.system(model.system_id)
+    fans = gain = None
+    if prediction is not None and "fan_power" in prediction.expected:
+        budget = model_budget(model, prediction, "fan_power")
+        fans = Measured("fan_power", prediction.expected["fan_power"].value, budget)
+    if prediction is not None and {"suction_temperature", "evaporating_temperature", "superheat"} <= set(
+        prediction.expected
+    ):
+        signs = {"suction_temperature": 1.0, "evaporating_temperature": -1.0, "superheat": -1.0}
+        gain = line_loss(model, prediction, signs, "suction_pressure", 0.0, 0.0).measured
+    power = compressor_power(have, fans)
+    inputs = {**have, **({"compressor_power": power} if power else {})}
+    results: list[RouteResult] = []
+    refusals: list[Refusal] = []
+
+    def attempt(route: str, key: str, make: object) -> None:
+        assert callable(make)
+        try:
+            results.append(make())
+        except NotCalculatedError as error:
+            refusals.append(Refusal(route, key, str(error)))  # type: ignore[arg-type]
+
+    for key in ("cooling_capacity", "heating_capacity"):
+        attempt(
+            "compressor heat balance", key,
+            lambda key=key: compressor_heat_balance(
+                model.refrigerant, inputs, key=key, shell=shell, line_gain=gain, compressor=system.compressor.type,
+                upsets=upsets,
+            ),
+        )  # fmt: skip
+    attempt("liquid side", "cooling_capacity", lambda: liquid_side(system.heat_source, "source", have))
+    attempt("liquid side", "heating_capacity", lambda: liquid_side(system.heat_sink, "sink", have))
+    air = loaded.barometric_pressure
+    attempt("air side", "cooling_capacity", lambda: air_side(system.heat_source, "source", air, have))
+    attempt("air side", "heating_capacity", lambda: air_side(system.heat_sink, "sink", air, have))
+    return results, refusals
+
+
+def _capacities(routes: Iterable[RouteResult], have: Mapping[str, Measured]) -> Iterator[tuple[str, Derived]]:
+    """Capacities by the best route and the COPs that follow."""
+    routes = list(routes)
+    for key in ("cooling_capacity", "heating_capacity"):
+        if key in have:
+            continue
+        best = next((r for wanted in BEST_FIRST for r in routes if r.route == wanted and r.measured.key == key), None)
+        if best is None:
+            continue
+        yield key, best.derived
+        if "power_input" in have:
+            cop = key.replace("capacity", "cop")
+            yield cop, ratio(cop, best.measured, have["power_input"])
+
+
+def _independent(have: Mapping[str, Measured], routes: Iterable[RouteResult]) -> Mapping[str, Measured]:
+    """The readings, with both capacities only where two different routes gave them: one route closes by itself."""
+    by_key = {
+        key: [r.route for r in routes if r.measured.key == key] for key in ("cooling_capacity", "heating_capacity")
+    }
+    best = {k: next((w for w in BEST_FIRST if w in v), None) for k, v in by_key.items()}
+    if set(best.values()) == {"compressor heat balance"}:
+        return {k: m for k, m in have.items() if k != "heating_capacity"}
+    return have

@@ -1,0 +1,227 @@
+"""What the contract says, and what that means on the day: the guaranteed value carried to the measured condition."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING, Literal
+
+from commission.acceptance.budget import Budget, Component, Measured, combine
+from commission.acceptance.decision import Rule
+from commission.acceptance.expectation import model_component
+from commission.acceptance.grid import Axis, interpolate, points
+from commission.errors import NotCalculatedError
+from commission.quantities import NOMENCLATURE, Explained, Input, Kind
+
+if TYPE_CHECKING:
+    from commission.description.model import Conditions, Guarantee, RatedPoint
+    from commission.prediction import SystemModel
+
+CarriedBy = Literal["design model", "supplier's table", "as stated"]
+DEFAULT_LARGEST_UNCERTAINTY = 0.05
+"""Largest expanded uncertainty of a capacity, as a share, where the contract states no tolerance that could say it:
+EN 14511-3, heating and cooling capacities (from memory)."""
+_NEAR: Mapping[Kind, float] = {Kind.TEMPERATURE: 0.5, Kind.RATIO: 0.05}
+_NEAR_SHARE = 0.05
+
+
+@dataclass(frozen=True, slots=True)
+class Terms:
+    """A guarantee in SI. `below` and `above` are shares of the value, None where the contract is silent."""
+
+    quantity: str
+    value: float
+    at: Mapping[str, float]
+    below: float | None = None
+    above: float | None = None
+    rule: Rule = "simple"
+    carried_by: CarriedBy = "design model"
+    route: str | None = None
+    source: str | None = None
+
+    def limits(self, value: float) -> tuple[float | None, float | None]:
+        """Lower and upper limit of the measured value where `value` is the guaranteed one of the day.
+
+        A power input is bounded from above, everything else from below; the other side only where the contract says so.
+        EN and AHRI tolerances already contain the uncertainty of the test: no guard is added here.
+        """
+        if self.quantity == "power_input":
+            lower = None if self.below is None else value * (1.0 - self.below)
+            return lower, value * (1.0 + (self.above or 0.0))
+        upper = None if self.above is None else value * (1.0 + self.above)
+        return value * (1.0 - (self.below or 0.0)), upper
+
+    def largest_expanded_uncertainty(self, value: float) -> float:
+        """The expanded uncertainty up to which the simple rule is fair: the tolerance itself, which is meant to hold it.
+
+        Where no tolerance is stated, the share of `DEFAULT_LARGEST_UNCERTAINTY`.
+        """
+        stated = [t for t in (self.below, self.above) if t]
+        return (min(stated) if stated else DEFAULT_LARGEST_UNCERTAINTY) * value
+
+
+@dataclass(frozen=True, slots=True)
+class Carried:
+    """A guaranteed value at the condition of the day, with its budget and how it got there."""
+
+    value: float
+    budget: Budget
+    explained: Explained
+
+
+def terms_of(guarantee: Guarantee) -> Terms:
+    """A guarantee of the description in SI."""
+    return Terms(
+        guarantee.quantity,
+        guarantee.value_si,
+        stated_conditions(guarantee.at),
+        guarantee.tolerance.below,
+        guarantee.tolerance.above,
+        guarantee.decision,
+        guarantee.carried_by,
+        guarantee.route,
+        guarantee.source,
+    )
+
+
+def stated_conditions(conditions: Conditions) -> dict[str, float]:
+    """The conditions that are stated, by nomenclature key."""
+    from commission.description.model import Conditions as Keys
+
+    values = ((key, getattr(conditions, key)) for key in Keys.model_fields)
+    return {key: value for key, value in values if value is not None}
+
+
+def carry(
+    terms: Terms, conditions: Mapping[str, Measured], model: SystemModel, rated_points: Sequence[RatedPoint] = ()
+) -> Carried:
+    """The guaranteed value at the measured condition, by the way that the contract states.
+
+    Raises:
+        NotCalculatedError: the model has no solution there, the table does not reach, or the day is not the stated
+            condition.
+    """
+    if terms.carried_by == "design model":
+        return by_model(terms, conditions, model)
+    if terms.carried_by == "supplier's table":
+        return by_table(terms, conditions, rated_points)
+    return as_stated(terms, conditions, model)
+
+
+def by_model(terms: Terms, conditions: Mapping[str, Measured], model: SystemModel) -> Carried:
+    """The guaranteed value times the ratio of the design model at the day's and at the guarantee's condition.
+
+    Each part of the model uncertainty counts with the difference of its relative effects at the two conditions: what
+    moves both alike moves the ratio not at all.
+    """
+    used = {k: m for k, m in conditions.items() if k in model.condition_axes}
+    day_values = {k: m.value for k, m in used.items()}
+    key = terms.quantity
+    for condition in terms.at:
+        if condition not in model.condition_axes:
+            label = NOMENCLATURE[condition].label.lower()
+            raise NotCalculatedError(f"the design model does not depend on {label}, which the guarantee states")
+    there, day = model.predict(dict(terms.at)), model.predict(day_values)
+    for prediction in (there, day):
+        if key not in prediction.expected:
+            raise NotCalculatedError(prediction.not_calculated.get(key, f"the model does not calculate {key}"))
+    base, now = there.expected[key].value, day.expected[key].value
+    value = terms.value * now / base
+    parts = []
+    for cause in sorted(set(there.parts.get(key, {})) | set(day.parts.get(key, {}))):
+        change = day.parts.get(key, {}).get(cause, 0.0) / now - there.parts.get(key, {}).get(cause, 0.0) / base
+        if change:
+            part = model_component(model, cause, value * change, key)
+            parts.append(replace(part, remedy="test nearer to the condition of the guarantee"))
+    slopes = model.sensitivities(day_values).get(key, {})
+    through = [m.budget.scaled(terms.value / base * slopes[k]) for k, m in used.items() if slopes.get(k)]
+    budget = combine(Budget(tuple(parts)), *through)
+    return _carried(terms, value, budget, "guarantee_by_model", used, Input("design model, ratio", now / base,
+                    Kind.NUMBER, "calculated"))  # fmt: skip
+
+
+def by_table(terms: Terms, conditions: Mapping[str, Measured], rated_points: Sequence[RatedPoint]) -> Carried:
+    """The guaranteed value times the ratio of the supplier's table at the day's and at the guarantee's condition.
+
+    The table is that of the rated points which state the quantity; it must be a full grid over the conditions that vary in
+    it and is read linearly along each. What lies between its points is the supplier's own: no uncertainty is added.
+    """
+    axes, values = supplier_grid(terms.quantity, rated_points)
+    base, _ = interpolate(axes, values, terms.at)
+    now, slopes = interpolate(axes, values, {k: m.value for k, m in conditions.items()})
+    value = terms.value * now / base
+    used = {a.key: conditions[a.key] for a in axes}
+    through = [used[k].budget.scaled(terms.value / base * slope) for k, slope in slopes.items() if slope]
+    ratio = Input("supplier's table, ratio", now / base, Kind.NUMBER, "calculated")
+    return _carried(terms, value, combine(*through), "guarantee_by_table", used, ratio)
+
+
+def supplier_grid(quantity: str, rated_points: Sequence[RatedPoint]) -> tuple[tuple[Axis, ...], tuple[float, ...]]:
+    """The rated points as a grid over the conditions that vary in them.
+
+    Raises:
+        NotCalculatedError: fewer than two points state the quantity, or they form no full grid.
+    """
+    rows = [(stated_conditions(p), v) for p in rated_points if (v := _rated_value(quantity, p)) is not None]
+    keys = sorted({k for at, _ in rows for k in at})
+    varying = [k for k in keys if len({at.get(k) for at, _ in rows}) > 1]
+    label = NOMENCLATURE[quantity].label.lower()
+    if len(rows) < 2 or not varying:
+        raise NotCalculatedError(f"the supplier's table needs at least two rated points that state {label}")
+    if any(k not in at for at, _ in rows for k in varying):
+        raise NotCalculatedError("a rated point of the supplier's table leaves out a condition that others state")
+    axes = tuple(Axis(k, tuple(sorted({at[k] for at, _ in rows}))) for k in varying)
+    table = {tuple(at[k] for k in varying): v for at, v in rows}
+    wanted = points(axes)
+    if len(table) != len(rows) or len(wanted) != len(table):
+        raise NotCalculatedError(
+            "the rated points form no full table: every combination of conditions must be there once"
+        )
+    return axes, tuple(table[tuple(at[k] for k in varying)] for at in wanted)
+
+
+def _rated_value(quantity: str, point: RatedPoint) -> float | None:
+    if quantity in ("cooling_cop", "heating_cop"):
+        capacity = point.cooling_capacity if quantity == "cooling_cop" else point.heating_capacity
+        return None if capacity is None or point.power_input is None else capacity / point.power_input
+    value: float | None = getattr(point, quantity)
+    return value
+
+
+def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemModel) -> Carried:
+    """The guaranteed value itself, where the day is the stated condition: within 0.5 K (5 % otherwise) or the uncertainty.
+
+    What the rest of the difference may do comes into the budget through the sensitivities of the model.
+    """
+    used = {}
+    for key, wanted in terms.at.items():
+        label = NOMENCLATURE[key].label.lower()
+        if key not in conditions:
+            raise NotCalculatedError(f"it needs a reading of {label}")
+        kind = NOMENCLATURE[key].kind
+        near = max(_NEAR.get(kind, _NEAR_SHARE * abs(wanted)), conditions[key].budget.expanded())
+        if abs(conditions[key].value - wanted) > near:
+            raise NotCalculatedError(f"the guarantee holds only as stated, and the {label} of the day is another one")
+        used[key] = conditions[key]
+    slopes = model.sensitivities({k: m.value for k, m in used.items() if k in model.condition_axes})
+    through = []
+    for key, measured in used.items():
+        slope = slopes.get(terms.quantity, {}).get(key, 0.0)
+        if slope:
+            off = Component(
+                f"{NOMENCLATURE[key].label.lower()} not quite as stated",
+                slope * (measured.value - terms.at[key]) / math.sqrt(3.0), "rectangular",
+                source="difference of the day from the stated condition times the sensitivity of the model", of=key,
+                remedy="test nearer to the condition of the guarantee",
+            )  # fmt: skip
+            through += [measured.budget.scaled(slope), Budget((off,) if off.value else ())]
+    return _carried(terms, terms.value, combine(*through), "guarantee_as_stated", used)
+
+
+def _carried(
+    terms: Terms, value: float, budget: Budget, method: str, used: Mapping[str, Measured], *more: Input
+) -> Carried:
+    stated = Input(f"guaranteed {terms.quantity}", terms.value, NOMENCLATURE[terms.quantity].kind, "contract")
+    inputs = (stated, *more, *(Input(k, m.value, NOMENCLATURE[k].kind, "reading") for k, m in used.items()))
+    return Carried(value, budget, Explained(terms.quantity, value, budget.standard, method, inputs))

@@ -1,0 +1,214 @@
+"""A visit judged: deviations always, verdicts on guarantees in a test only."""
+
+from __future__ import annotations
+
+import datetime as dt
+from collections.abc import Collection, Iterable, Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any, Literal
+
+from commission.acceptance.budget import Budget, Measured, combine
+from commission.acceptance.changes import with_advice
+from commission.acceptance.decision import Decision, Outcome, decide
+from commission.acceptance.derived import Derived
+from commission.acceptance.evaluation import Evaluation, evaluate
+from commission.acceptance.expectation import Deviation, Expectation
+from commission.acceptance.guarantee import Carried, Terms, carry, terms_of
+from commission.acceptance.impossible import Impossible
+from commission.acceptance.instruments import Reading
+from commission.acceptance.routes import Refusal, RouteResult
+from commission.acceptance.steadiness import Steadiness, steadiness
+from commission.errors import NotCalculatedError
+from commission.quantities import NOMENCLATURE, Explained
+
+if TYPE_CHECKING:
+    from commission.acceptance.sheet import TestSheet
+    from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
+
+Mode = Literal["trim", "test"]
+
+
+@dataclass(frozen=True, slots=True)
+class GuaranteeVerdict:
+    """One guarantee judged. `guaranteed` is the value on the day, None where it could not be carried there.
+
+    `budget` is that of measured value minus limit, shared causes kept. `withheld` says why there is no verdict although a
+    test was made: readings that cannot be, a plant that did not stand still, a route that was refused.
+    """
+
+    terms: Terms
+    guaranteed: Explained | None
+    measured: Measured | None
+    route: str | None
+    budget: Budget | None
+    decision: Decision | None
+    withheld: str | None
+    frozen: bool
+
+    @property
+    def outcome(self) -> Outcome:
+        """The verdict: the decision, or undecided where it is withheld."""
+        return self.decision.outcome if self.decision is not None and self.withheld is None else "undecided"
+
+    @property
+    def what_would_decide(self) -> str | None:
+        """What would turn undecided into a decision."""
+        if self.withheld is not None:
+            return f"a repeated test without this fault: {self.withheld}"
+        return self.decision.what_would_decide if self.decision else None
+
+
+@dataclass(frozen=True)
+class Judgement:
+    """Everything that a record and a page show of one visit. Mappings by nomenclature key, values SI."""
+
+    system: str
+    mode: Mode
+    conditions: Mapping[str, Measured]
+    measured: Mapping[str, Measured]
+    derived: Mapping[str, Derived]
+    expectations: Mapping[str, Expectation]
+    deviations: tuple[Deviation, ...]
+    routes: tuple[RouteResult, ...]
+    refusals: tuple[Refusal, ...]
+    guarantees: tuple[GuaranteeVerdict, ...]
+    steadiness: tuple[Steadiness, ...]
+    impossible: tuple[Impossible, ...]
+    not_judged: Mapping[str, str]
+    warnings: tuple[str, ...]
+    sheet_digest: str | None = None
+
+    @property
+    def outcome(self) -> Outcome | None:
+        """The verdict over all guarantees: the worst of them; None where nothing was judged (trim, or no contract)."""
+        found = {g.outcome for g in self.guarantees}
+        for outcome in ("not conforming", "undecided", "conforming"):
+            if outcome in found:
+                return outcome
+        return None
+
+    def as_data(self) -> dict[str, Any]:
+        """The judgement as plain data for a filed record and `--json`: °C, Pa absolute, SI otherwise."""
+        from commission.acceptance.judgement_data import data_of
+
+        return data_of(self)
+
+
+def judge(
+    loaded: LoadedPlant,
+    model: SystemModel,
+    conditions: Iterable[Reading],
+    readings: Iterable[Reading],
+    mode: Mode,
+    sheet: TestSheet | None = None,
+    *,
+    on: dt.date | None = None,
+    since_start: float | None = None,
+    since_defrost: float | None = None,
+    limits: str = "site",
+    upsets: Collection[str] = (),
+) -> Judgement:
+    """Judge the readings of one visit.
+
+    In *trim* there are deviations only. In a *test* each guarantee gets one verdict: from the frozen sheet where there is
+    one, otherwise from the description as it stands. Times in s; `limits` names a set of steadiness limits; `on` is the
+    day, for the calibrations. Readings: SI, pressures absolute.
+
+    Raises:
+        InputError: a condition that this system does not have.
+    """
+    asked, read = list(conditions), list(readings)
+    system = loaded.system(model.system_id)
+    found = evaluate(loaded, model, asked, read, on=on, sheet=sheet, upsets=upsets)
+    liquid = frozenset(
+        side for side, m in (("source", system.heat_source), ("sink", system.heat_sink)) if m.medium != "air"
+    )
+    chosen = sheet.steadiness if sheet is not None else limits
+    still = steadiness(
+        [*asked, *read], since_start, since_defrost, limits=chosen, liquid_sides=liquid,
+        defrosts=system.evaporator.defrost is not None,
+    )  # fmt: skip
+    verdicts: list[GuaranteeVerdict] = []
+    if mode == "test":
+        verdicts = _verdicts(loaded, model, found, sheet, withheld_by(found.impossible, still))
+    warnings = list(found.warnings)
+    if sheet is not None and sheet.system != model.system_id:
+        warnings.append(f"the test sheet is one of {sheet.system}, not of {model.system_id}")
+    if mode == "test" and verdicts and sheet is None:
+        warnings.append("no frozen test sheet: the guarantees are judged by the description as it stands today")
+    return Judgement(
+        model.system_id, mode, found.conditions, found.measured, found.derived, found.expectations, found.deviations,
+        found.routes, found.refusals, tuple(verdicts), still, found.impossible, found.not_judged, tuple(warnings),
+        sheet.digest if sheet is not None else None,
+    )  # fmt: skip
+
+
+def withheld_by(contradictions: Iterable[Impossible], still: Iterable[Steadiness]) -> str | None:
+    """Why no verdict can be given on these readings at all, None where nothing stands against one."""
+    reasons = [f"readings that cannot be: {c.text}" for c in contradictions]
+    reasons += [s.text for s in still if s.steady is False]
+    return "; ".join(reasons) or None
+
+
+def _verdicts(
+    loaded: LoadedPlant, model: SystemModel, found: Evaluation, sheet: TestSheet | None, withheld: str | None
+) -> list[GuaranteeVerdict]:
+    if sheet is not None:
+        targets = sheet.targets_for("guarantee")
+        return [
+            verdict(t.terms, found, lambda t=t: sheet.carried(t, found.conditions), withheld, frozen=True)  # type: ignore[misc]
+            for t in targets
+            if t.terms is not None
+        ]
+    system = loaded.system(model.system_id)
+    all_terms = [terms_of(g) for g in system.guarantee]
+    return [
+        verdict(
+            terms, found, lambda terms=terms: carry(terms, found.conditions, model, system.rated_points), withheld  # type: ignore[misc]
+        )
+        for terms in all_terms
+    ]  # fmt: skip
+
+
+def verdict(
+    terms: Terms, found: Evaluation, carried_by: Any, withheld: str | None = None, frozen: bool = False
+) -> GuaranteeVerdict:
+    """One guarantee judged by the evaluated readings; `carried_by()` gives the guaranteed value of the day."""
+    try:
+        measured, route = found.quantity(terms.quantity, terms.route)
+    except NotCalculatedError as error:
+        reason = f"{NOMENCLATURE[terms.quantity].label.lower()} could not be measured: {error}"
+        return GuaranteeVerdict(terms, None, None, terms.route, None, None, withheld or reason, frozen)
+    try:
+        carried: Carried = carried_by()
+    except NotCalculatedError as error:
+        return GuaranteeVerdict(terms, None, measured, route, None, None, withheld or str(error), frozen)
+    decision, budget = decide_guarantee(terms, measured, carried)
+    decision = with_advice(decision, budget, _other_routes(terms, found, carried, route))
+    return GuaranteeVerdict(terms, carried.explained, measured, route, budget, decision, withheld, frozen)
+
+
+def decide_guarantee(terms: Terms, measured: Measured, carried: Carried) -> tuple[Decision, Budget]:
+    """The decision on a measured value and a carried guarantee, and the budget it was made with.
+
+    The carried limit is uncertain too (condition, model); what measured value and limit share cancels as far as it does.
+    """
+    lower, upper = terms.limits(carried.value)
+    binding = lower if upper is None or (lower is not None and measured.value < 0.5 * (lower + upper)) else upper
+    assert binding is not None
+    budget = combine(measured.budget, carried.budget.scaled(-binding / carried.value))
+    largest = terms.largest_expanded_uncertainty(carried.value)
+    decision = decide(measured.value, budget, lower, upper, terms.rule, largest_expanded_uncertainty=largest)
+    return decision, budget
+
+
+def _other_routes(terms: Terms, found: Evaluation, carried: Carried, route: str) -> tuple[str, ...]:
+    """Other routes of the same visit that would decide, as sentences."""
+    ways = []
+    for result in found.routes:
+        if result.measured.key == terms.quantity and result.route != route:
+            decision, _ = decide_guarantee(terms, result.measured, carried)
+            if decision.outcome != "undecided":
+                ways.append(f"the {result.route} would decide it, if both sides agree on that route")
+    return tuple(ways)

@@ -1,0 +1,124 @@
+"""Whether the plant stood still enough for its readings to count, by limits that are data."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass
+from functools import cache
+from importlib.resources import files
+from typing import Any
+
+from commission.acceptance.instruments import Reading
+from commission.quantities import NOMENCLATURE, Kind
+
+_MEDIUM = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "heat_sink_inlet_temperature",
+           "heat_sink_outlet_temperature")  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class Steadiness:
+    """One check of steadiness. `steady` is None where nothing shows it either way; `text` says it to a person.
+
+    `key` is a nomenclature key, `since_start` or `since_defrost`; `largest` and `limit` are in the SI unit of `kind`.
+    """
+
+    key: str
+    largest: float | None
+    limit: float
+    kind: Kind
+    steady: bool | None
+    text: str
+
+
+@cache
+def library() -> Mapping[str, Any]:
+    """The sets of limits of `steadiness.yaml` by name."""
+    import yaml
+
+    text = (files("commission.acceptance") / "steadiness.yaml").read_text(encoding="utf-8")
+    data: Mapping[str, Any] = yaml.safe_load(text)
+    return data
+
+
+def steadiness(
+    readings: Iterable[Reading],
+    since_start: float | None,
+    since_defrost: float | None,
+    *,
+    limits: str = "site",
+    liquid_sides: frozenset[str] = frozenset(),
+    defrosts: bool = False,
+) -> tuple[Steadiness, ...]:
+    """All checks of one visit. Times in s; `liquid_sides` holds `source` and `sink` where the medium is a liquid.
+
+    `defrosts`: whether the plant has a defrost at all, so that the time since the last one must be known.
+    """
+    chosen = library()[limits]
+    checks = list(_times(chosen, since_start, since_defrost, defrosts))
+    for reading in readings:
+        one = _spread(reading, chosen, liquid_sides)
+        if one is not None:
+            checks.append(one)
+    return tuple(checks)
+
+
+def _times(
+    chosen: Mapping[str, Any], since_start: float | None, since_defrost: float | None, defrosts: bool
+) -> Iterator[Steadiness]:
+    wanted = [("since_start", since_start, "the start")]
+    if defrosts or since_defrost is not None:
+        wanted.append(("since_defrost", since_defrost, "the last defrost"))
+    for key, seconds, what in wanted:
+        limit = float(chosen[key])
+        least = f"at least {limit / 60:.0f} min after {what} are wanted ({chosen['title']})"
+        if seconds is None:
+            yield Steadiness(key, None, limit, Kind.DURATION, None, f"the time since {what} is not recorded; {least}")
+        else:
+            steady = seconds >= limit
+            said = "read" if steady else "read too early:"
+            yield Steadiness(
+                key, seconds, limit, Kind.DURATION, steady, f"{said} {seconds / 60:.0f} min after {what}; {least}"
+            )
+
+
+def _spread(reading: Reading, chosen: Mapping[str, Any], liquid_sides: frozenset[str]) -> Steadiness | None:
+    entry = next((chosen["limits"][c] for c in _classes(reading.key, liquid_sides) if c in chosen["limits"]), None)
+    if entry is None or not reading.samples:
+        return None
+    label = NOMENCLATURE[reading.key].label.lower()
+    mean = math.fsum(reading.samples) / len(reading.samples)
+    limit = float(entry["individual"]) * (abs(mean) if entry.get("relative") else 1.0)
+    kind = NOMENCLATURE[reading.key].kind
+    if len(reading.samples) < int(chosen["least_samples"]):
+        few = f"{label}: {len(reading.samples)} samples are too few to show that it stood still"
+        return Steadiness(reading.key, None, limit, kind, None, few)
+    largest = max(abs(x - mean) for x in reading.samples)
+    steady = largest <= limit
+    verb = "stood still" if steady else "moved more than is allowed"
+    return Steadiness(reading.key, largest, limit, kind, steady, f"{label} {verb} ({chosen['title']})")
+
+
+def _classes(key: str, liquid_sides: frozenset[str]) -> Iterator[str]:
+    """Names of limits that a quantity falls under, the most particular first."""
+    kind = NOMENCLATURE[key].kind
+    side = key.removeprefix("heat_").partition("_")[0]
+    liquid = side in liquid_sides
+    if key in _MEDIUM:
+        if liquid:
+            yield "liquid inlet" if "inlet" in key else "liquid outlet"
+        yield "medium temperature"
+    elif key.endswith("wet_bulb"):
+        yield "wet bulb"
+    elif key in ("evaporating_temperature", "condensing_temperature"):
+        yield "saturation temperature"
+    elif kind is Kind.TEMPERATURE:
+        yield "refrigerant temperature"
+    elif kind is Kind.PRESSURE:
+        yield "pressure"
+    elif kind is Kind.POWER:
+        yield "power"
+    elif kind is Kind.VOLUME_FLOW:
+        if liquid:
+            yield "liquid flow"
+        yield "flow"
