@@ -20,7 +20,8 @@ class EfficiencyShape:
     Winandy, Saavedra & Lebrun (Applied Thermal Engineering 22, 2002, 107-120 and Int. J. Thermal Sciences 41, 2002,
     181-192). The loss pressure is `loss_suction` p1 + `loss_discharge` p2, so that the efficiency has a peak and
     declines to both sides. With `built_in_volume_ratio` (scroll, screw) the gas is compressed inside to a fixed volume
-    and the rest at constant volume, so that too low and too high a pressure ratio cost work.
+    and the rest at constant volume, so that too low and too high a pressure ratio cost work. Gas that leaks back is
+    compressed again; the gas of the clearance gives its work back.
     """
 
     clearance: float
@@ -41,7 +42,8 @@ class EfficiencyShape:
         `work` is the isentropic work over p1 v1 (no unit) and `exponent` the mean isentropic exponent of p and v.
         """
         losses = (self.loss_suction + self.loss_discharge * ratio) / (self.volumetric(ratio) * work)
-        return 1 / (self._inside(ratio, exponent) + losses)
+        recompressed = 1 / (1 - self.leakage * (ratio - 1))
+        return 1 / (self._inside(ratio, exponent) * recompressed + losses)
 
     def _inside(self, ratio: float, k: float) -> float:
         """Work inside a compressor of fixed built-in volume ratio over isentropic work, at least 1."""

@@ -39,7 +39,8 @@ class OperatingPoint:
     """The balance of all components at one condition.
 
     Temperatures in K, pressures in Pa absolute, heat and power in W. `evaporating_temperature` and
-    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet. `share` is the manipulated
+    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet; `source_drive` and `sink_drive` the refrigerant
+    temperatures that drive the exchangers, for blends means along them. `share` is the manipulated
     share of the head-pressure control, `sink_fan_share` its share of fan power. `jacobian` and `unknowns` start a
     neighbouring solution.
     """
@@ -60,6 +61,8 @@ class OperatingPoint:
     heat_from_source: float
     heat_to_sink: float
     line_gain: float
+    source_drive: float
+    sink_drive: float
     source_inlet_temperature: float
     sink_inlet_temperature: float
     sink_outlet_temperature: float

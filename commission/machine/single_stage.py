@@ -255,6 +255,8 @@ class _Circuit:
             heat_from_source=source,
             heat_to_sink=sink,
             line_gain=compression.flow * (suction.h - outlet.h),
+            source_drive=self.source_drive(evaporating, condensing),
+            sink_drive=self.sink_drive(condensing),
             source_inlet_temperature=self.media.source.inlet(-source),
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),

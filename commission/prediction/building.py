@@ -91,7 +91,7 @@ def shape_of(a: Mapping[str, float]) -> EfficiencyShape:
         leakage=a["compressor_leakage"],
         loss_suction=a["compressor_suction_loss"],
         loss_discharge=a["compressor_discharge_loss"],
-        built_in_volume_ratio=a.get("compressor_volume_ratio"),
+        built_in_volume_ratio=a["compressor_volume_ratio"] or None,
     )
 
 

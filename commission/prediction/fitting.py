@@ -168,9 +168,11 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
         evaporating = given["evaporating_temperature"]
     else:
         evaporating = rated.source_temperature - given.get("source_minus_evaporating", a["source_minus_evaporating"])
+        evaporating += 0.35 * _glide(facts, evaporating)
     condensing = given.get("condensing_temperature")
     if condensing is None:
         condensing = rated.sink_temperature + given.get("condensing_minus_sink_inlet", a["condensing_minus_sink_inlet"])
+        condensing += 0.5 * _glide(facts, condensing)
     unit = Levels(1.0, 1.0, 1.0, 1.0)
     plan = build(facts, a, unit, rated)
     conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
@@ -188,6 +190,12 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     return Levels(swept, isentropic, *_conductances(problem, a, rated, evaporating, condensing, heat))
 
 
+def _glide(facts: Facts, temperature: float) -> float:
+    """Dew point minus bubble point in K at the dew pressure of `temperature`; 0 for a pure fluid."""
+    fluid = facts.fluid
+    return temperature - fluid.bubble_temperature(fluid.dew(temperature).p) if fluid.is_blend else 0.0
+
+
 def _conductances(
     problem: _Problem, a: Mapping[str, float], rated: Rated, evaporating: float, condensing: float, heat: float
 ) -> tuple[float, float]:
@@ -195,13 +203,19 @@ def _conductances(
     condenser = condenser_conductance(facts, rated.sink_flow)
     if condenser is None:
         medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
-        condenser = conductance_for(heat, condensing - rated.sink_temperature, medium.capacity_rate)
+        condenser = conductance_for(
+            heat, condensing - 0.5 * _glide(facts, condensing) - rated.sink_temperature, medium.capacity_rate
+        )
     evaporator = _evaporator(facts, a, rated, case)
     if evaporator is None:
         medium = stream(
             rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
         )
-        evaporator = conductance_for(rated.source_heat, rated.source_temperature - evaporating, medium.capacity_rate)
+        evaporator = conductance_for(
+            rated.source_heat,
+            rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating),
+            medium.capacity_rate,
+        )
     return condenser, evaporator
 
 

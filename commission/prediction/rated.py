@@ -234,9 +234,9 @@ def observed(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, floa
     if of == "condensing_temperature":
         return point.condensing_temperature
     if of == "source_minus_evaporating":
-        return point.source_inlet_temperature - point.evaporating_temperature
+        return point.source_inlet_temperature - point.source_drive
     if of == "condensing_minus_sink_inlet":
-        return point.condensing_temperature - point.sink_inlet_temperature
+        return point.sink_drive - point.sink_inlet_temperature
     if of == "isentropic_efficiency":
         return point.compression.isentropic_efficiency
     if of == "volumetric_efficiency":
