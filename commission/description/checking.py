@@ -4,14 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from itertools import islice
-from types import NoneType, UnionType
-from typing import Annotated, Any, Literal, TypeVar, Union, get_args, get_origin
+from typing import Any, TypeVar
 
 from pydantic import BaseModel, ValidationError
-from pydantic.fields import FieldInfo
 from pydantic_core import ErrorDetails
 
 from commission.description.positions import DescriptionError, KeyPath, Positions
+from commission.description.shapes import annotation_at, choices_of, field_at, known_keys
 from commission.errors import InputError, Problem, nearest, shorten
 
 MAX_PROBLEMS = 100
@@ -94,7 +93,7 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
     context: Mapping[str, Any] = error.get("ctx") or {}
     match error["type"]:
         case "extra_forbidden":
-            known = known_keys(_annotation_at(model_cls, inside[:-1]))
+            known = known_keys(annotation_at(model_cls, inside[:-1]))
             word = str(inside[-1])
             return positions.problem(
                 path,
@@ -106,7 +105,7 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
         case "missing":
             return _missing(model_cls, inside, positions, path)
         case "literal_error" | "enum":
-            choices = choices_of(_annotation_at(model_cls, inside))
+            choices = choices_of(annotation_at(model_cls, inside))
             written = positions.text(path)
             near = nearest(written, choices) if written else None
             return positions.problem(path, "this word is not known here", allowed=_listed(choices), nearest=near)
@@ -120,7 +119,7 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
             message = _WANTED.get(kind) or shorten(error["msg"])
             if positions.text(path) == "":
                 message = f"nothing is written here; {message}"
-            allowed = _listed(known_keys(_annotation_at(model_cls, inside))) if "keys" in message else None
+            allowed = _listed(known_keys(annotation_at(model_cls, inside))) if "keys" in message else None
             return positions.problem(path, message, allowed=allowed or None)
 
 
@@ -133,7 +132,7 @@ def _wrong_length(context: Mapping[str, Any]) -> str:
 
 
 def _missing(model_cls: type[BaseModel], inside: KeyPath, positions: Positions, path: KeyPath) -> Problem:
-    field = _field_at(model_cls, inside)
+    field = field_at(model_cls, inside)
     meaning = f" ({field.description})" if field and field.description else ""
     choices = choices_of(field.annotation) if field else ()
     parent = path[:-1]
@@ -150,58 +149,3 @@ def _missing(model_cls: type[BaseModel], inside: KeyPath, positions: Positions, 
 
 def _listed(words: Sequence[str]) -> str:
     return ", ".join(words)
-
-
-def known_keys(annotation: Any) -> tuple[str, ...]:
-    """The keys that may stand in a mapping of this type; none where the keys are names that a person chooses."""
-    annotation = _plain(annotation)
-    if isinstance(annotation, type) and issubclass(annotation, BaseModel):
-        return tuple(info.alias or name for name, info in annotation.model_fields.items())
-    return ()
-
-
-def choices_of(annotation: Any) -> tuple[str, ...]:
-    """The words allowed by a type that is a choice of words, else nothing."""
-    annotation = _plain(annotation)
-    return tuple(map(str, get_args(annotation))) if get_origin(annotation) is Literal else ()
-
-
-def _plain(annotation: Any) -> Any:
-    """A type without its `Annotated` and `| None` wrappings."""
-    while True:
-        origin = get_origin(annotation)
-        if origin is Annotated:
-            annotation = get_args(annotation)[0]
-        elif origin in (Union, UnionType):
-            parts = [a for a in get_args(annotation) if a is not NoneType]
-            if len(parts) != 1:
-                return annotation
-            annotation = parts[0]
-        else:
-            return annotation
-
-
-def _field_at(model_cls: type[BaseModel], inside: KeyPath) -> FieldInfo | None:
-    owner = _plain(_annotation_at(model_cls, inside[:-1]))
-    if isinstance(owner, type) and issubclass(owner, BaseModel):
-        for name, info in owner.model_fields.items():
-            if inside[-1] in (name, info.alias):
-                return info
-    return None
-
-
-def _annotation_at(model_cls: type[BaseModel], inside: KeyPath) -> Any:
-    """The type that a model has at a key path; `Any` where the path leaves the model."""
-    current: Any = model_cls
-    for part in inside:
-        current = _plain(current)
-        if isinstance(current, type) and issubclass(current, BaseModel):
-            info = next((f for n, f in current.model_fields.items() if part in (f.alias or n, n)), None)
-            current = info.annotation if info else Any
-        elif get_origin(current) in (dict, Mapping):
-            current = get_args(current)[1]
-        elif get_origin(current) in (tuple, list):
-            current = get_args(current)[0]
-        else:
-            return Any
-    return current

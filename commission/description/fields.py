@@ -22,6 +22,10 @@ class Meaning:
     words: str
 
 
+_WITH_UNIT = r"[0-9].*[^0-9.,\s]"
+"""What an editor can check of a quantity: a digit, and something after it that is no digit."""
+
+
 def _refuse(error: QuantityError) -> PydanticCustomError:
     problem = error.problems[0]
     return PydanticCustomError(
@@ -70,13 +74,16 @@ def _out_of_range(message: str, allowed: str) -> PydanticCustomError:
 def _quantity(
     kind: Kind, low: str | None = None, high: str | None = None, *, positive: bool = False
 ) -> tuple[BeforeValidator, WithJsonSchema, Meaning]:
-    types = ["string", "number"] if kind is Kind.NUMBER else "string"
+    if kind is Kind.NUMBER:
+        schema: dict[str, Any] = {"type": ["string", "number"]}
+    else:
+        schema = {"type": "string", "pattern": _WITH_UNIT}
     words = describe(kind)
     if low is not None and high is not None:
         words += f"; from {low} to {high}"
     return (
         BeforeValidator(_text_only(kind, _within(kind, low, high, positive))),
-        WithJsonSchema({"type": types, "description": words}),
+        WithJsonSchema({**schema, "description": words}),
         Meaning(kind, words),
     )
 
@@ -115,7 +122,7 @@ def _pressure(text: str) -> Pressure:
 GaugeOrAbsolute = Annotated[
     Pressure,
     BeforeValidator(_text_only(Kind.PRESSURE, _pressure)),
-    WithJsonSchema({"type": "string", "description": describe(Kind.PRESSURE)}),
+    WithJsonSchema({"type": "string", "pattern": _WITH_UNIT, "description": describe(Kind.PRESSURE)}),
     Meaning(Kind.PRESSURE, describe(Kind.PRESSURE)),
 ]
 

@@ -112,7 +112,9 @@ def site_pressure(plant: Plant) -> float:
     stated = plant.plant.barometric_pressure
     if stated is not None:
         return stated.pascal
-    return float(101325.0 * (1 - 2.25577e-5 * plant.plant.altitude) ** 5.25588)
+    from commission.properties import barometric_pressure
+
+    return float(barometric_pressure(plant.plant.altitude))
 
 
 def digest_of(contents: Mapping[str, bytes]) -> str:

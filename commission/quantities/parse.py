@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from commission.errors import InputError, Problem, nearest, shorten
 from commission.quantities.kinds import Kind
-from commission.quantities.units import Reference, find_unit, kinds_of, known_spellings, units_of
+from commission.quantities.units import Reference, find_unit, kinds_of, known_spellings
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,10 +56,21 @@ _EXAMPLE: dict[Kind, str] = {
     Kind.PRESSURE_DIFFERENCE: "120 Pa or 0.5 in w.g.",
     Kind.POWER: "3.4 kW, 11600 Btu/h or 1.8 refrigeration tons",
     Kind.MASS: "0.45 kg or 1.0 lb",
-    Kind.VOLUME: "2.5 L",
+    Kind.VOLUME: "2.5 L or 60 US gal",
     Kind.VOLUME_FLOW: "1200 m3/h or 400 cfm",
     Kind.RATIO: "65 %",
-    Kind.NUMBER: "a plain number such as 3.2",
+    Kind.ENERGY: "1.8 kWh",
+    Kind.LENGTH: "2.8 m or 9 ft",
+    Kind.AREA: "24 m2 or 260 ft2",
+    Kind.MASS_FLOW: "45 kg/h or 100 lb/h",
+    Kind.CONDUCTANCE: "450 W/K",
+    Kind.CURRENT: "5.2 A",
+    Kind.VOLTAGE: "400 V",
+    Kind.SPEED: "1450 rpm",
+    Kind.VELOCITY: "3 m/s or 500 fpm",
+    Kind.DENSITY: "0.038 kg/m3",
+    Kind.SPECIFIC_ENTHALPY: "280 kJ/kg",
+    Kind.SOUND_LEVEL: "45 dB(A)",
     Kind.DURATION: "20 min or 6 h",
 }
 
@@ -70,8 +81,10 @@ def _fail(text: str, kind: Kind, message: str, near: str | None = None) -> Quant
 
 def describe(kind: Kind) -> str:
     """What may stand where this kind of quantity is wanted, with examples."""
-    example = _EXAMPLE.get(kind) or " or ".join(f"1 {u.name}" for u in units_of(kind)[:3])
-    return f"a {kind.value}, for example {example}"
+    if kind is Kind.NUMBER:
+        return "a plain number, such as 3.2"
+    article = "an" if kind.value[0] in "aeiou" else "a"
+    return f"{article} {kind.value}, for example {_EXAMPLE[kind]}"
 
 
 def parse_number(text: str) -> tuple[float, str]:
