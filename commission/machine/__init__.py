@@ -3,7 +3,7 @@
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
 from commission.machine.head_pressure import HeadPressure
-from commission.machine.operating_point import Media, OperatingPoint, StatePoint
+from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage, SuctionLine
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
@@ -12,6 +12,7 @@ __all__ = [
     "FREE",
     "HELD",
     "LOWEST",
+    "Balance",
     "Compression",
     "Compressor",
     "EfficiencyShape",

@@ -35,19 +35,40 @@ class Media:
 
 
 @dataclass(frozen=True, slots=True)
-class OperatingPoint:
+class Balance:
     """The balance of all components at one condition.
 
     Temperatures in K, pressures in Pa absolute, heat and power in W. `evaporating_temperature` and
-    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet; `source_drive` and `sink_drive` the refrigerant
-    temperatures that drive the exchangers, for blends means along them. `share` is the manipulated
-    share of the head-pressure control, `sink_fan_share` its share of fan power. `jacobian` and `unknowns` start a
-    neighbouring solution.
+    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet; `source_drive` and
+    `sink_drive` the refrigerant temperatures that drive the exchangers, for blends means along them. `share` is the
+    manipulated share of the head-pressure control, `sink_fan_share` and `sink_flow_share` its shares of fan power and
+    flow. `jacobian` and `unknowns` start a neighbouring solution.
     """
 
     regime: str
     evaporating_temperature: float
     condensing_temperature: float
+    compression: Compression
+    heat_from_source: float
+    heat_to_sink: float
+    source_drive: float
+    sink_drive: float
+    source_inlet_temperature: float
+    sink_inlet_temperature: float
+    sink_outlet_temperature: float
+    share: float
+    sink_fan_share: float
+    sink_flow_share: float
+    evaluations: int
+    unknowns: tuple[float, ...]
+    jacobian: tuple[tuple[float, ...], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class OperatingPoint:
+    """A balance with all states of the refrigerant; `line_gain` in W is what the suction line picks up."""
+
+    balance: Balance
     suction_pressure: float
     discharge_pressure: float
     suction_temperature: float
@@ -57,20 +78,6 @@ class OperatingPoint:
     compressor_superheat: float
     subcooling: float
     valve_outlet_temperature: float
-    compression: Compression
-    heat_from_source: float
-    heat_to_sink: float
     line_gain: float
-    source_drive: float
-    sink_drive: float
-    source_inlet_temperature: float
-    sink_inlet_temperature: float
-    sink_outlet_temperature: float
-    share: float
-    sink_fan_share: float
-    sink_flow_share: float
     states: tuple[StatePoint, ...]
     warnings: tuple[str, ...]
-    evaluations: int
-    unknowns: tuple[float, ...]
-    jacobian: tuple[tuple[float, ...], ...]

@@ -15,7 +15,7 @@ from commission.errors import NotCalculatedError
 from commission.machine.compressor import Compression, Compressor
 from commission.machine.exchanger import Exchanger
 from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
-from commission.machine.operating_point import Media, OperatingPoint, StatePoint
+from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.solver import Solution, solve
 from commission.properties import Refrigerant, State
 
@@ -52,43 +52,31 @@ class SingleStage:
     discharge_line_loss: float = 0.0
     head_pressure: HeadPressure | None = None
 
-    def operate(self, media: Media, start: OperatingPoint | None = None) -> OperatingPoint:
-        """The operating point at this condition; `start` is a neighbouring point that saves work.
+    def balance(self, media: Media, start: Balance | None = None) -> Balance:
+        """The balance at this condition; `start` is a neighbouring one that saves work.
 
         Raises:
             NotCalculatedError: no balance within the range of the property data; the message says why.
         """
+        return _balance(_Circuit(self, media), start)
+
+    def operate(self, media: Media, start: Balance | None = None) -> OperatingPoint:
+        """The balance at this condition with all states.
+
+        Raises:
+            NotCalculatedError: as `balance`.
+        """
         circuit = _Circuit(self, media)
-        control = self.head_pressure
-        if control is None:
-            return circuit.free(1.0, FREE, start)
-        if start is not None and start.regime == HELD:
-            held = circuit.held(control, start)
-            if held is not None:
-                return held
-        point = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
-        if point.condensing_temperature >= control.hold:
-            return point
-        held = circuit.held(control, None)
-        if held is None:
-            raise NotCalculatedError(
-                "no balance with the head pressure held, though the free condensing temperature is below the setting"
-            )
-        return held
+        return circuit.point(_balance(circuit, start))
 
     def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
         """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
         return _Circuit(self, media).cycle(evaporating, condensing)
 
     def condensing_unit(
-        self,
-        evaporating_temperature: float,
-        superheat: float,
-        subcooling: float,
-        media: Media,
-        start: OperatingPoint | None = None,
-    ) -> OperatingPoint:
-        """The condensing side alone at a given dew point (K) and superheat (K) at its suction, as it is catalogued.
+        self, evaporating: float, superheat: float, subcooling: float, media: Media, start: Balance | None = None
+    ) -> Balance:
+        """The condensing side alone at a given dew point and superheat (K) at its suction, as it is catalogued.
 
         `heat_from_source` then counts all the superheat to the suction port, as EN 13215 and EN 12900 do.
 
@@ -96,7 +84,27 @@ class SingleStage:
             NotCalculatedError: no balance within the range of the property data.
         """
         unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine())
-        return _Circuit(unit, media).condensing_side(evaporating_temperature, start)
+        return _Circuit(unit, media).condensing_side(evaporating, start)
+
+
+def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
+    """Free where the condensing temperature stays above the setting of the head pressure, held below."""
+    control = circuit.machine.head_pressure
+    if control is None:
+        return circuit.free(1.0, FREE, start)
+    if start is not None and start.regime == HELD:
+        held = circuit.held(control, start)
+        if held is not None:
+            return held
+    free = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
+    if free.condensing_temperature >= control.hold:
+        return free
+    held = circuit.held(control, None)
+    if held is None:
+        raise NotCalculatedError(
+            "no balance with the head pressure held, though the free condensing temperature is below the setting"
+        )
+    return held
 
 
 class _Circuit:
@@ -126,7 +134,7 @@ class _Circuit:
         if condensing not in self._high:
             m, fluid = self.machine, self.machine.refrigerant
             pressure = fluid.dew(condensing).p
-            liquid = fluid.liquid(fluid.bubble_temperature(pressure) - m.subcooling, pressure)
+            liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
             discharge = fluid.dew(condensing + m.discharge_line_loss).p if m.discharge_line_loss else pressure
             self._high[condensing] = (discharge, liquid)
         return self._high[condensing]
@@ -152,7 +160,12 @@ class _Circuit:
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
             return condensing
-        return 0.5 * (condensing + fluid.bubble_temperature(fluid.dew(condensing).p))
+        return 0.5 * (condensing + self._bubble_temperature(condensing))
+
+    def _bubble_temperature(self, condensing: float) -> float:
+        """Bubble point in K at the dew pressure of `condensing`."""
+        fluid = self.machine.refrigerant
+        return fluid.bubble_temperature(fluid.dew(condensing).p) if fluid.is_blend else condensing
 
     def _source_gap(self, evaporating: float, condensing: float, taken: float) -> float:
         source, exchanger = self.media.source, self.machine.evaporator
@@ -167,7 +180,7 @@ class _Circuit:
         taken = per_kelvin * (self.sink_drive(condensing) - sink.temperature)
         return (taken - given) / (per_kelvin * 10.0)
 
-    def free(self, share: float, regime: str, start: OperatingPoint | None) -> OperatingPoint:
+    def free(self, share: float, regime: str, start: Balance | None) -> Balance:
         """Both temperatures follow the exchangers."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
@@ -177,9 +190,9 @@ class _Circuit:
         near = start is not None and len(start.unknowns) == 2
         guess = start.unknowns if near and start is not None else self._guess()
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self._point(solution.x[0], solution.x[1], share, regime, solution)
+        return self._result(solution.x[0], solution.x[1], share, regime, solution)
 
-    def held(self, control: HeadPressure, start: OperatingPoint | None) -> OperatingPoint | None:
+    def held(self, control: HeadPressure, start: Balance | None) -> Balance | None:
         """Condensing temperature held; None where the condenser would need more than its full share."""
         condensing = control.hold
 
@@ -198,9 +211,9 @@ class _Circuit:
             return None
         if share == control.least_share:
             return self.free(share, LOWEST, None)
-        return self._point(solution.x[0], condensing, share, HELD, solution)
+        return self._result(solution.x[0], condensing, share, HELD, solution)
 
-    def condensing_side(self, evaporating: float, start: OperatingPoint | None) -> OperatingPoint:
+    def condensing_side(self, evaporating: float, start: Balance | None) -> Balance:
         """Only the condenser balances; the evaporating temperature is given."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
@@ -209,7 +222,7 @@ class _Circuit:
         near = start is not None and len(start.unknowns) == 1
         guess = start.unknowns if near and start is not None else self._guess()[1:]
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self._point(evaporating, solution.x[0], 1.0, FREE, solution)
+        return self._result(evaporating, solution.x[0], 1.0, FREE, solution)
 
     def _guess(self) -> tuple[float, float]:
         source, sink = self.media.source.temperature, self.media.sink.temperature
@@ -217,16 +230,40 @@ class _Circuit:
         highest = 0.94 * self.machine.refrigerant.T_critical
         return evaporating, min(max(sink + 10.0, evaporating + 15.0), highest)
 
-    def _point(
-        self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution
-    ) -> OperatingPoint:
-        m, fluid = self.machine, self.machine.refrigerant
-        outlet, suction = self.low_side(evaporating)
-        pressure, liquid = self.high_side(condensing)
+    def _result(self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution) -> Balance:
+        control = self.machine.head_pressure
+        flow = flow_share(control, share)
+        through = replace(self.media.sink, capacity_rate=flow * self.media.sink.capacity_rate)
         compression, source, sink = self.cycle(evaporating, condensing)
-        discharge = fluid.vapour_from_enthalpy(pressure, compression.discharge_enthalpy)
+        return Balance(
+            regime=regime,
+            evaporating_temperature=evaporating,
+            condensing_temperature=condensing,
+            compression=compression,
+            heat_from_source=source,
+            heat_to_sink=sink,
+            source_drive=self.source_drive(evaporating, condensing),
+            sink_drive=self.sink_drive(condensing),
+            source_inlet_temperature=self.media.source.inlet(-source),
+            sink_inlet_temperature=through.inlet(sink),
+            sink_outlet_temperature=through.outlet(sink),
+            share=share,
+            sink_fan_share=fan_share(control, share),
+            sink_flow_share=flow,
+            evaluations=solution.evaluations,
+            unknowns=solution.x,
+            jacobian=solution.jacobian,
+        )
+
+    def point(self, balance: Balance) -> OperatingPoint:
+        """All states of a balance."""
+        fluid = self.machine.refrigerant
+        condensing = balance.condensing_temperature
+        outlet, suction = self.low_side(balance.evaporating_temperature)
+        pressure, liquid = self.high_side(condensing)
+        discharge = fluid.vapour_from_enthalpy(pressure, balance.compression.discharge_enthalpy)
         throttled = fluid.throttled(outlet.p, liquid.h)
-        dew, bubble = fluid.dew(condensing), fluid.bubble(fluid.bubble_temperature(fluid.dew(condensing).p))
+        dew, bubble = fluid.dew(condensing), fluid.bubble(self._bubble_temperature(condensing))
         states = (
             StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),
             StatePoint("2", "compressor suction", suction.p, suction.h, suction.T, suction.s),
@@ -236,36 +273,18 @@ class _Circuit:
             StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
             StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
         )
-        control, flow = m.head_pressure, flow_share(m.head_pressure, share)
-        through = replace(self.media.sink, capacity_rate=flow * self.media.sink.capacity_rate)
         return OperatingPoint(
-            regime=regime,
-            evaporating_temperature=evaporating,
-            condensing_temperature=condensing,
+            balance=balance,
             suction_pressure=suction.p,
             discharge_pressure=pressure,
             suction_temperature=suction.T,
             discharge_temperature=discharge.T,
             liquid_temperature=liquid.T,
-            superheat=m.superheat,
-            compressor_superheat=suction.T - fluid.dew_temperature(suction.p),
-            subcooling=m.subcooling,
+            superheat=self.machine.superheat,
+            compressor_superheat=suction.T - balance.evaporating_temperature + self.machine.suction_line.pressure_loss,
+            subcooling=self.machine.subcooling,
             valve_outlet_temperature=throttled.T,
-            compression=compression,
-            heat_from_source=source,
-            heat_to_sink=sink,
-            line_gain=compression.flow * (suction.h - outlet.h),
-            source_drive=self.source_drive(evaporating, condensing),
-            sink_drive=self.sink_drive(condensing),
-            source_inlet_temperature=self.media.source.inlet(-source),
-            sink_inlet_temperature=through.inlet(sink),
-            sink_outlet_temperature=through.outlet(sink),
-            share=share,
-            sink_fan_share=fan_share(control, share),
-            sink_flow_share=flow,
+            line_gain=balance.compression.flow * (suction.h - outlet.h),
             states=states,
             warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
-            evaluations=solution.evaluations,
-            unknowns=solution.x,
-            jacobian=solution.jacobian,
         )

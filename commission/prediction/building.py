@@ -265,10 +265,11 @@ def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: fl
     rating = part.rating
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
-    return _rating("evaporator", rating.capacity, rating.temperature_difference, medium)
+    capacity = rating.capacity * (1.0 + a["exchanger_rating_departure"])
+    return _rating("evaporator", capacity, rating.temperature_difference, medium)
 
 
-def condenser_conductance(facts: Facts, sink_flow: float) -> float | None:
+def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float) -> float | None:
     """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
     part = facts.system.condenser
     if part.conductance is not None:
@@ -278,7 +279,8 @@ def condenser_conductance(facts: Facts, sink_flow: float) -> float | None:
     rating = part.rating
     air_on = rating.air_on if rating.air_on is not None else 25.0 + KELVIN
     medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
-    return _rating("condenser", rating.capacity, rating.temperature_difference, medium)
+    capacity = rating.capacity * (1.0 + a["exchanger_rating_departure"])
+    return _rating("condenser", capacity, rating.temperature_difference, medium)
 
 
 def _rating(what: str, capacity: float, difference: float, medium: Stream) -> float:

@@ -7,7 +7,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
-from commission.machine import Media, OperatingPoint, carnot_cooling, entropic_mean
+from commission.machine import Balance, Media, OperatingPoint, carnot_cooling, entropic_mean
 from commission.machine.wet_air import leaving_air
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
@@ -23,11 +23,12 @@ class Found:
 
 def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoint) -> Found:
     """All quantities at one operating point."""
-    power = point.compression.power + plan.fans.counted(point.sink_fan_share)
+    balance = point.balance
+    power = balance.compression.power + plan.fans.counted(balance.sink_fan_share)
     fan = plan.fans.source if facts.source_liquid is None else 0.0
     values = {
-        "evaporating_temperature": point.evaporating_temperature,
-        "condensing_temperature": point.condensing_temperature,
+        "evaporating_temperature": balance.evaporating_temperature,
+        "condensing_temperature": balance.condensing_temperature,
         "suction_pressure": point.suction_pressure,
         "discharge_pressure": point.discharge_pressure,
         "suction_temperature": point.suction_temperature,
@@ -36,22 +37,22 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "superheat": point.superheat,
         "compressor_superheat": point.compressor_superheat,
         "subcooling": point.subcooling,
-        "evaporator_temperature_difference": point.source_inlet_temperature - point.evaporating_temperature,
-        "condenser_temperature_difference": point.condensing_temperature - point.sink_inlet_temperature,
-        "pressure_ratio": point.compression.pressure_ratio,
-        "refrigerant_flow": point.compression.flow,
-        "cooling_capacity": point.heat_from_source,
-        "net_cooling_capacity": point.heat_from_source - fan,
-        "heating_capacity": point.heat_to_sink,
-        "compressor_power": point.compression.power,
-        "fan_power": plan.fans.counted(point.sink_fan_share),
+        "evaporator_temperature_difference": balance.source_inlet_temperature - balance.evaporating_temperature,
+        "condenser_temperature_difference": balance.condensing_temperature - balance.sink_inlet_temperature,
+        "pressure_ratio": balance.compression.pressure_ratio,
+        "refrigerant_flow": balance.compression.flow,
+        "cooling_capacity": balance.heat_from_source,
+        "net_cooling_capacity": balance.heat_from_source - fan,
+        "heating_capacity": balance.heat_to_sink,
+        "compressor_power": balance.compression.power,
+        "fan_power": plan.fans.counted(balance.sink_fan_share),
         "power_input": power,
-        "cooling_cop": point.heat_from_source / power,
-        "heating_cop": point.heat_to_sink / power,
+        "cooling_cop": balance.heat_from_source / power,
+        "heating_cop": balance.heat_to_sink / power,
     }
     found = Found(values, {})
     _add(found, "current", lambda: _current(facts, plan, power))
-    _media(media, point, found)
+    _media(media, balance, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
@@ -72,17 +73,17 @@ def _current(facts: Facts, plan: Plan, power: float) -> float:
     return power / (lines * plate.voltage * plan.power_factor)
 
 
-def _media(media: Media, point: OperatingPoint, found: Found) -> None:
+def _media(media: Media, balance: Balance, found: Found) -> None:
     source = media.source
     source_in, sink_in, sink_out = (
-        point.source_inlet_temperature,
-        point.sink_inlet_temperature,
-        point.sink_outlet_temperature,
+        balance.source_inlet_temperature,
+        balance.sink_inlet_temperature,
+        balance.sink_outlet_temperature,
     )
     if source.air is not None:
-        source_out = leaving_air(source, point.heat_from_source, point.evaporating_temperature).temperature
+        source_out = leaving_air(source, balance.heat_from_source, balance.evaporating_temperature).temperature
     else:
-        source_out = source.outlet(-point.heat_from_source)
+        source_out = source.outlet(-balance.heat_from_source)
     found.values["heat_source_inlet_temperature"] = source_in
     found.values["heat_sink_inlet_temperature"] = sink_in
     found.values["heat_sink_outlet_temperature"] = sink_out

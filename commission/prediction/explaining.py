@@ -168,7 +168,7 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
                 Kind.TEMPERATURE_DIFFERENCE, "evaporator.rating.temperature_difference",
             ),
         )  # fmt: skip
-    compression = point.compression
+    compression = point.balance.compression
     add(("refrigerant_flow",), Input("volumetric efficiency", compression.volumetric_efficiency, Kind.RATIO, "fitted"))
     add(("compressor_power",), Input("isentropic efficiency", compression.isentropic_efficiency, Kind.RATIO, "fitted"))
     if system.compressor.displacement is not None:

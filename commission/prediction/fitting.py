@@ -17,7 +17,7 @@ import numpy as np
 
 from commission.description import Assumption
 from commission.errors import NotCalculatedError
-from commission.machine import OperatingPoint, conductance_for
+from commission.machine import Balance, conductance_for
 from commission.prediction.building import (
     SINK_HUMIDITY,
     Levels,
@@ -31,7 +31,17 @@ from commission.prediction.building import (
     stream,
 )
 from commission.prediction.facts import Facts, Used
-from commission.prediction.rated import Case, Datum, cases_of, observed, rated_of, reference, simulate, with_data
+from commission.prediction.rated import (
+    MARGIN,
+    Case,
+    Datum,
+    cases_of,
+    observed,
+    rated_of,
+    reference,
+    simulate,
+    with_data,
+)
 
 SCATTER = "scatter of rated points"
 Array = np.ndarray[tuple[int, ...], np.dtype[np.float64]]
@@ -63,7 +73,7 @@ class Fit:
     used: Mapping[str, Assumption]
     values: Mapping[str, float]
     cases: tuple[Case, ...]
-    points: tuple[OperatingPoint, ...]
+    points: tuple[Balance, ...]
     scatter: float
     dof: int
     misses: tuple[tuple[Datum, float], ...]
@@ -113,7 +123,7 @@ def _prepare(facts: Facts, a: Mapping[str, float]) -> tuple[_Problem, Levels]:
     case = cases[middle]
     rated = rated_of(facts, a, case)
     evaporator = _evaporator(facts, a, rated, case)
-    condenser = condenser_conductance(facts, rated.sink_flow)
+    condenser = condenser_conductance(facts, a, rated.sink_flow)
     cases[middle] = with_data(case, tuple(_missing(facts, cases, evaporator is None, condenser is None)))
     problem = _Problem(facts, tuple(cases), middle, evaporator is not None, condenser is not None, ())
     return problem, _start(problem, a, rated)
@@ -200,7 +210,7 @@ def _conductances(
     problem: _Problem, a: Mapping[str, float], rated: Rated, evaporating: float, condensing: float, heat: float
 ) -> tuple[float, float]:
     facts, case = problem.facts, problem.cases[problem.reference]
-    condenser = condenser_conductance(facts, rated.sink_flow)
+    condenser = condenser_conductance(facts, a, rated.sink_flow)
     if condenser is None:
         medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
         condenser = conductance_for(
@@ -224,15 +234,15 @@ def _plan(problem: _Problem, a: Mapping[str, float], levels: Levels) -> Plan:
     facts, case = problem.facts, problem.cases[problem.reference]
     rated = rated_of(facts, a, case)
     evaporator = _evaporator(facts, a, rated, case) if problem.fixed_evaporator else levels.evaporator
-    condenser = condenser_conductance(facts, rated.sink_flow) if problem.fixed_condenser else levels.condenser
+    condenser = condenser_conductance(facts, a, rated.sink_flow) if problem.fixed_condenser else levels.condenser
     assert evaporator is not None
     assert condenser is not None
     return build(facts, a, replace(levels, evaporator=evaporator, condenser=condenser), rated)
 
 
 def _gaps(
-    problem: _Problem, a: Mapping[str, float], levels: Levels, starts: Sequence[OperatingPoint] | None
-) -> tuple[Array, Plan, tuple[OperatingPoint, ...]]:
+    problem: _Problem, a: Mapping[str, float], levels: Levels, starts: Sequence[Balance] | None
+) -> tuple[Array, Plan, tuple[Balance, ...]]:
     """(calculated - stated) / sigma of every datum; assumed data follow their assumption value."""
     plan = _plan(problem, a, levels)
     gaps, points = [], []
@@ -250,8 +260,8 @@ def _exact(
     a: Mapping[str, float],
     start: Levels,
     jacobian: list[Array] | None,
-    starts: Sequence[OperatingPoint] | None = None,
-) -> tuple[Levels, Plan, tuple[OperatingPoint, ...]]:
+    starts: Sequence[Balance] | None = None,
+) -> tuple[Levels, Plan, tuple[Balance, ...]]:
     """Newton for as many levels as data; `jacobian` (a list of one, or empty) is reused and refreshed as needed."""
     logs = np.array(start.logs())
     store = jacobian if jacobian is not None else []
@@ -275,7 +285,7 @@ def _names(problem: _Problem) -> list[str]:
 
 
 def _level_jacobian(
-    problem: _Problem, a: Mapping[str, float], logs: Array, gaps: Array, starts: Sequence[OperatingPoint]
+    problem: _Problem, a: Mapping[str, float], logs: Array, gaps: Array, starts: Sequence[Balance]
 ) -> Array:
     columns = []
     for n in problem.free:
@@ -294,7 +304,7 @@ def _uncertain(facts: Facts, used: Used) -> list[str]:
 
 
 def _exact_variants(
-    problem: _Problem, values: Used, levels: Levels, points: tuple[OperatingPoint, ...]
+    problem: _Problem, values: Used, levels: Levels, points: tuple[Balance, ...]
 ) -> tuple[Variant, ...]:
     variants, store = [], list[Array]()
     for key in _uncertain(problem.facts, values):
@@ -314,7 +324,7 @@ def _finish(
     problem: _Problem,
     levels: Levels,
     plan: Plan,
-    points: tuple[OperatingPoint, ...],
+    points: tuple[Balance, ...],
     values: Used,
     variants: tuple[Variant, ...],
     scatter: float,
@@ -333,36 +343,36 @@ def _finish(
 
 def _fit_table(problem: _Problem, start: Levels, values: Used) -> Fit:
     """More data than levels: levels and uncertain assumptions together, assumptions held by their ranges."""
+    build(problem.facts, values, start, rated_of(problem.facts, values, problem.cases[problem.reference]))
     _gaps(problem, values, start, None)
     problem = replace(problem, loose=tuple(_uncertain(problem.facts, values)))
-    solver = _Table(problem, dict(values))
-    x, gaps, plan, points, matrix = solver.minimum(solver.pack(start), np.zeros(len(problem.loose)), None, None)
+    table = _Table(problem, dict(values))
+    x, gaps, plan, points, matrix = table.minimum(table.pack(start))
     stated = np.array([d.assumption is None for c in problem.cases for d in c.data])
     dof = int(stated.sum()) - len(problem.free)
-    chi = math.sqrt(float((gaps[: len(stated)][stated] ** 2).sum()) / dof) if dof > 0 else 0.0
+    chi = math.sqrt(float((gaps[: len(stated)][stated] ** 2).sum()) / dof)
+    inverse: Array = np.asarray(np.linalg.inv(matrix.T @ matrix), dtype=np.float64)
     variants = []
     for n, key in enumerate(problem.loose):
-        shift = np.zeros(len(problem.loose))
-        shift[n] = 1.0
-        _, _, moved, _, _ = solver.minimum(x, shift, points, matrix)
-        variants.append(Variant(key, moved, math.copysign(1.0, move(problem.facts.assumptions[key]))))
-    widen = max(chi, 1.0)
-    for direction in _scatter_directions(matrix, stated):
-        _, moved, _ = solver.gaps(x + widen * direction, np.zeros(len(problem.loose)), points)
-        variants.append(Variant(SCATTER, moved, 1.0))
-    levels, a = solver.unpack(x)
-    return _finish(problem, levels, plan, points, values, tuple(variants), 0.015 * chi, dof, a)
+        sign = math.copysign(1.0, move(problem.facts.assumptions[key]))
+        variants.append(Variant(key, table.plan(x + inverse[:, len(problem.free) + n]), sign))
+    for direction in _scatter_directions(inverse, matrix[: len(stated)][stated]):
+        variants.append(Variant(SCATTER, table.plan(x + max(chi, 1.0) * direction), 1.0))
+    levels, a = table.unpack(x)
+    return _finish(problem, levels, plan, points, values, tuple(variants), MARGIN * chi, dof, a)
 
 
-def _scatter_directions(matrix: Array, stated: Array) -> list[Array]:
-    """Directions in which one standard deviation of the stated data moves the fit: columns of a square root of
-    H^-1 (J^T J of the stated data) H^-1."""
-    inverse = np.linalg.inv(matrix.T @ matrix)
-    rows = matrix[: len(stated)][stated]
+def _scatter_directions(inverse: Array, rows: Array) -> list[Array]:
+    """Directions in which one standard deviation of the stated data moves the fit.
+
+    They are columns of a square root of H^-1 (J^T J) H^-1, with H^-1 = `inverse` and J = `rows` of the stated data.
+    Moving the prior of assumption k by one standard uncertainty moves the fit by column k of H^-1; both together make
+    up the covariance H^-1 of the weighted least squares.
+    """
     values, vectors = np.linalg.eigh(inverse @ (rows.T @ rows) @ inverse)
     order = np.argsort(values)[::-1]
     largest = values[order[0]]
-    return [vectors[:, n] * math.sqrt(values[n]) for n in order if values[n] > 1e-6 * largest]
+    return [vectors[:, n] * math.sqrt(values[n]) for n in order if values[n] > 1e-4 * largest]
 
 
 @dataclass(frozen=True)
@@ -373,10 +383,12 @@ class _Table:
     values: Mapping[str, float]
 
     def pack(self, levels: Levels) -> Array:
+        """Unknowns at these levels and all assumptions at their values."""
         logs = np.array(levels.logs())[list(self.problem.free)]
         return np.concatenate([logs, np.zeros(len(self.problem.loose))])
 
     def unpack(self, x: Array) -> tuple[Levels, dict[str, float]]:
+        """Levels and assumption values of the unknowns."""
         logs = np.zeros(4)
         logs[list(self.problem.free)] = x[: len(self.problem.free)]
         a = dict(self.values)
@@ -384,36 +396,48 @@ class _Table:
             a[key] += float(z) * move(self.problem.facts.assumptions[key])
         return Levels.from_logs(tuple(logs)), a
 
-    def gaps(
-        self, x: Array, shift: Array, starts: Sequence[OperatingPoint] | None
-    ) -> tuple[Array, Plan, tuple[OperatingPoint, ...]]:
+    def plan(self, x: Array) -> Plan:
+        """The machine of these unknowns."""
+        levels, a = self.unpack(x)
+        return _plan(self.problem, a, levels)
+
+    def gaps(self, x: Array, starts: Sequence[Balance] | None) -> tuple[Array, Plan, tuple[Balance, ...]]:
+        """Misses of data and of assumptions, in standard uncertainties."""
         levels, a = self.unpack(x)
         data, plan, points = _gaps(self.problem, a, levels, starts)
-        return np.concatenate([data, x[len(self.problem.free) :] - shift]), plan, points
+        return np.concatenate([data, x[len(self.problem.free) :]]), plan, points
 
-    def minimum(
-        self, x: Array, shift: Array, starts: Sequence[OperatingPoint] | None, matrix: Array | None
-    ) -> tuple[Array, Array, Plan, tuple[OperatingPoint, ...], Array]:
-        """Gauss-Newton; a Jacobian that is handed in is kept, since a refit stays close."""
-        gaps, plan, points = self.gaps(x, shift, starts)
-        keep = matrix is not None
-        for _ in range(12):
-            if matrix is None or not keep:
-                matrix = self._jacobian(x, shift, gaps, points)
-            step = np.linalg.lstsq(matrix, -gaps, rcond=None)[0]
-            if float(np.abs(step).max()) < (1e-4 if keep else 1e-5):
+    def minimum(self, x: Array) -> tuple[Array, Array, Plan, tuple[Balance, ...], Array]:
+        """Gauss-Newton with the Jacobian of the start, made anew once near the minimum."""
+        gaps, plan, points = self.gaps(x, None)
+        columns = list(range(len(x)))
+        for _ in range(3):
+            matrix = self._jacobian(x, gaps, points, columns)
+            columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
+            moved = 0.0
+            for _ in range(4):
+                step = np.linalg.lstsq(matrix, -gaps, rcond=None)[0]
+                step *= min(1.0, 0.7 / max(float(np.abs(step).max()), 1e-12))
+                x = x + step
+                gaps, plan, points = self.gaps(x, points)
+                moved = max(moved, float(np.abs(step).max()))
+                if float(np.abs(step).max()) < 1e-3:
+                    break
+            if moved < 0.3:
                 break
-            step *= min(1.0, 0.5 / float(np.abs(step).max())) if not keep else 1.0
-            x = x + step
-            gaps, plan, points = self.gaps(x, shift, points)
-        assert matrix is not None
         return x, gaps, plan, points, matrix
 
-    def _jacobian(self, x: Array, shift: Array, gaps: Array, starts: Sequence[OperatingPoint]) -> Array:
-        columns = []
+    def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Balance], columns: Sequence[int]) -> Array:
+        """By differences; `columns` are the unknowns that move a datum, the others are priors alone."""
+        matrix = np.zeros((len(gaps), len(x)))
         for n in range(len(x)):
             step = 2e-3 if n < len(self.problem.free) else 0.05
-            moved = x.copy()
-            moved[n] += step
-            columns.append((self.gaps(moved, shift, starts)[0] - gaps) / step)
-        return np.column_stack(columns)
+            if n in columns:
+                moved = x.copy()
+                moved[n] += step
+                matrix[:, n] = (self.gaps(moved, starts)[0] - gaps) / step
+                if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() < 1e-6:
+                    matrix[: len(gaps) - len(self.problem.loose), n] = 0.0
+            else:
+                matrix[len(gaps) - len(x) + n, n] = 1.0
+        return matrix

@@ -130,7 +130,7 @@ class SystemModel:
         self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
     ) -> tuple[Found, OperatingPoint]:
         around = media(self.facts, plan, whole)
-        point = plan.machine.operate(around, start)
+        point = plan.machine.operate(around, start.balance if start is not None else None)
         return expected_values(self.facts, plan, around, point), point
 
     def _changes(
@@ -166,7 +166,15 @@ class SystemModel:
         if beats_carnot(nominal.values):
             warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")
         return Prediction(
-            self.system_id, whole, filled, point.regime, expected, nominal.reasons, point.states, tuple(warnings), parts
+            self.system_id,
+            whole,
+            filled,
+            point.balance.regime,
+            expected,
+            nominal.reasons,
+            point.states,
+            tuple(warnings),
+            parts,
         )
 
     def _own_parts(self, nominal: Found, parts: dict[str, dict[str, float]]) -> None:
@@ -228,7 +236,6 @@ def _fitted(facts: Facts, found: Fit) -> dict[str, Input]:
         ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
         ("condensing temperature at the rated point", point.condensing_temperature, Kind.TEMPERATURE),
         ("evaporating temperature at the rated point", point.evaporating_temperature, Kind.TEMPERATURE),
-        ("discharge temperature at the rated point", point.discharge_temperature, Kind.TEMPERATURE),
     ]
     if facts.system.compressor.displacement is not None:
         values.insert(

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 
 from commission.description.model import CondensingUnit, RatedPoint
 from commission.errors import NotCalculatedError
-from commission.machine import Media, OperatingPoint
+from commission.machine import Balance, Media
 from commission.prediction.building import (
     SINK_HUMIDITY,
     Plan,
@@ -199,16 +199,14 @@ def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[flo
     return case.unit.evaporating + difference, case.sink_temperature
 
 
-def simulate(
-    facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start: OperatingPoint | None
-) -> OperatingPoint:
-    """The operating point of the model at a rated point.
+def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start: Balance | None) -> Balance:
+    """The balance of the model at a rated point.
 
     Raises:
         NotCalculatedError: there is none.
     """
     if case.unit is None:
-        return plan.machine.operate(media(facts, plan, case.conditions), start)
+        return plan.machine.balance(media(facts, plan, case.conditions), start)
     around = _unit_media(facts, plan, case)
     unit = case.unit
     superheat = unit.superheat if unit.superheat is not None else a["rating_superheat"]
@@ -221,7 +219,7 @@ def _unit_media(facts: Facts, plan: Plan, case: Case) -> Media:
     return media(facts, plan, conditions)
 
 
-def observed(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, float], of: str) -> float:
+def observed(plan: Plan, case: Case, point: Balance, a: Mapping[str, float], of: str) -> float:
     """What the model calculates for one datum, in SI."""
     if of == "cooling_capacity":
         return point.heat_from_source
@@ -244,7 +242,7 @@ def observed(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, floa
     raise KeyError(of)
 
 
-def _fans_counted(plan: Plan, case: Case, point: OperatingPoint, a: Mapping[str, float]) -> float:
+def _fans_counted(plan: Plan, case: Case, point: Balance, a: Mapping[str, float]) -> float:
     if case.unit is None:
         return plan.fans.counted(point.sink_fan_share)
     share = a["fans_in_rated_power"] if case.unit.counts_fan is None else float(case.unit.counts_fan)
