@@ -45,9 +45,8 @@ class ReadingCapability:
 class GuaranteeCapability:
     """One guarantee: could it be decided if the plant read as expected, and if not, what would decide it.
 
-    `decided` is about a plant that reads exactly what the design model expects. `margin` is the distance of that reading
-    from the limit, `detectable` the one-sided expanded uncertainty: a margin above it is decided under either rule.
-    `change` is the smallest change of the test that would decide it, None where none is needed or none would do.
+    `decided` is about a plant that reads exactly what the design model expects. `change` is the smallest change of the
+    test that would decide it, None where none is needed or none would do.
     """
 
     terms: Terms
@@ -122,7 +121,7 @@ def _readings(
 
 
 def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model: SystemModel) -> list[Reading]:
-    """The inlet temperatures are always read: without an instrument of the plant with an assumed one, which is warned of."""
+    """Inlet temperatures are always read: where no instrument fits, with an assumed one, which is warned of."""
     have = {r.key for r in readings}
     more = [k for k in model.condition_axes if k.endswith("inlet_temperature") and k not in have]
     return [*readings, *(Reading(k, conditions[k]) for k in more)]

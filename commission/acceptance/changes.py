@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 
 from commission.acceptance.budget import Budget, Component
 from commission.acceptance.decision import Decision
+from commission.quantities import NOMENCLATURE
 
 _MOST_SAMPLES = 10_000
 
@@ -17,10 +18,12 @@ class Change:
     """One change of a test.
 
     `causes` are the causes (or names) of the components to make smaller, together `factor` times what they are;
-    `samples` is the number of samples to take instead, for a spread; `remedies` say how.
+    `names` says the same in words for a person; `samples` is the number of samples to take instead, for a spread;
+    `remedies` say how.
     """
 
     causes: tuple[str, ...]
+    names: tuple[str, ...]
     factor: float
     samples: int | None = None
     remedies: tuple[str, ...] = ()
@@ -28,7 +31,7 @@ class Change:
     @property
     def text(self) -> str:
         """The change as a sentence for a person."""
-        what = " and ".join(self.causes)
+        what = " and ".join(self.names)
         how = f" ({'; '.join(self.remedies)})" if self.remedies else ""
         if self.samples is not None:
             return f"take {self.samples} samples for {what}{how}"
@@ -57,10 +60,9 @@ def smallest_change(budget: Budget, largest_standard: float, confidence: float =
     if single:
         return max(single, key=lambda change: change.factor)
     for count in range(2, len(movable) + 1):
-        chosen = movable[:count]
-        factor = _largest_factor(lambda f, chosen=chosen: fits(apply_change(budget, _change(chosen, f))))  # type: ignore[misc]
-        if factor is not None:
-            return _change(chosen, factor)
+        together = _gentlest(budget, movable[:count], fits)
+        if together is not None:
+            return together
     return None
 
 
@@ -107,15 +109,33 @@ def _single_changes(
             if many is not None:
                 yield many
             continue
-        factor = _largest_factor(lambda f, group=group: fits(apply_change(budget, _change([group], f))))  # type: ignore[misc]
-        if factor is not None:
-            yield _change([group], factor)
+        one = _gentlest(budget, [group], fits)
+        if one is not None:
+            yield one
+
+
+def _gentlest(budget: Budget, groups: list[tuple[Component, ...]], fits: Callable[[Budget], bool]) -> Change | None:
+    """The gentlest common factor on these groups that fits, None where even leaving them out does not."""
+
+    def change(factor: float) -> Change:
+        return _change(groups, factor)
+
+    factor = _largest_factor(lambda f: fits(apply_change(budget, change(f))))
+    return None if factor is None else change(factor)
 
 
 def _change(groups: list[tuple[Component, ...]], factor: float, samples: int | None = None) -> Change:
     causes = tuple(group[0].cause or group[0].name for group in groups)
-    remedies = tuple(dict.fromkeys(c.remedy for group in groups for c in group if c.remedy))
-    return Change(causes, factor, samples, remedies)
+    leading = [max((c for c in group if c.remedy), key=lambda c: abs(c.value)) for group in groups]
+    remedies = tuple(dict.fromkeys(c.remedy for c in leading))
+    return Change(causes, tuple(_named(c) for c in leading), factor, samples, remedies)
+
+
+def _named(component: Component) -> str:
+    """A component in words: which reading, and what of it."""
+    known = NOMENCLATURE.get(component.of)
+    about = known is not None and component.cause.startswith(f"{component.of}:")
+    return f"{component.name} ({known.label.lower()})" if known is not None and about else component.name
 
 
 def _largest_factor(fits: Callable[[float], bool]) -> float | None:

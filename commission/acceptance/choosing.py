@@ -1,4 +1,4 @@
-"""Which instrument of the plant will read a quantity, where the description does not say: for the page before the visit."""
+"""Which instrument of the plant will read a quantity, where the description does not say it."""
 
 from __future__ import annotations
 
@@ -10,6 +10,22 @@ from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Kind, Reference
 
 PIPE_TEMPERATURES = ("suction_temperature", "discharge_temperature", "liquid_temperature")
+DIRECT = (
+    *PIPE_TEMPERATURES,
+    *(
+        f"heat_{side}_{what}"
+        for side in ("source", "sink")
+        for what in ("inlet_temperature", "outlet_temperature", "wet_bulb", "relative_humidity", "flow")
+    ),
+    "suction_pressure",
+    "discharge_pressure",
+    "power_input",
+    "current",
+    "voltage",
+    "compressor_speed",
+    "barometric_pressure",
+)
+"""Quantities that one instrument shows by itself; all others are made of these, or need `measured_with` to say how."""
 
 
 def choose_instrument(
@@ -22,6 +38,8 @@ def choose_instrument(
     """
     if key in measured_with:
         return measured_with[key]
+    if key not in DIRECT:
+        return None
     fits = list(_fits(key, value, instruments, barometric))
     return min(fits)[2] if fits else None
 

@@ -59,9 +59,9 @@ def decide(
       its uncertainty. The parties share the risk, which is only fair while the test is good enough for the tolerance;
       so `largest_expanded_uncertainty` (two-sided at `confidence`) may be agreed. Where it is exceeded the test is not
       capable, and a value nearer to a limit than its one-sided expanded uncertainty is *undecided*, both ways.
-    - *guarded* (JCGM 106, 8.3): accepted only where the value is inside by the guard band `k u`, rejected only where it is
-      outside by it, *undecided* between. `k` is the one-sided normal quantile at `confidence`, so that an accepted
-      plant conforms with at least that probability.
+    - *guarded* (JCGM 106, 8.3): accepted only where the value is inside by the guard band `k u`, rejected only where it
+      is outside by it, *undecided* between. `k` is the one-sided normal quantile at `confidence`, so that an accepted
+      plant conforms with at least that probability (one limit).
 
     `uncertainty` is a budget or a standard uncertainty; few degrees of freedom widen it (`Budget.one_sided`).
 
@@ -117,7 +117,7 @@ def probability_of_conformity(value: float, u: float, lower: float | None, upper
 
 
 def significant(deviation: float, uncertainty: float, confidence: float = 0.95) -> bool:
-    """Whether a deviation is larger than its two-sided expanded uncertainty, so that chance alone hardly explains it."""
+    """Whether a deviation is larger than its two-sided expanded uncertainty: chance alone hardly explains it."""
     return _above(abs(deviation), normal_quantile(0.5 + confidence / 2.0) * uncertainty)
 
 

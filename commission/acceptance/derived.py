@@ -67,7 +67,7 @@ def line_loss(
     slope: float,
     saturation: float,
 ) -> LineLoss:
-    """Expected difference between a sum of expected temperatures and the saturation temperature at an expected pressure.
+    """Expected difference between a sum of expected temperatures and the saturation at an expected pressure.
 
     `signs` gives the temperatures that are added; `slope` is dT/dp of the saturation line at the expected pressure,
     `saturation` its temperature there. The property source is left out: it moves both ends alike.

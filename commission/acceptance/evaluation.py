@@ -1,10 +1,11 @@
-"""One visit worked through: readings, derived readings, routes, expectations, deviations, contradictions. No verdict."""
+"""One visit worked through: readings, derived readings, routes, expectations, deviations. No verdict."""
 
 from __future__ import annotations
 
 import datetime as dt
-from collections.abc import Collection, Iterable, Iterator, Mapping
+from collections.abc import Callable, Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass, field
+from functools import partial
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Measured
@@ -15,6 +16,7 @@ from commission.acceptance.instruments import Reading, measure
 from commission.acceptance.routes import (
     SHELL,
     Refusal,
+    Route,
     RouteResult,
     air_side,
     compressor_heat_balance,
@@ -100,8 +102,9 @@ def evaluate(
 ) -> Evaluation:
     """Work through the readings of one visit.
 
-    Pressures are absolute, gauge readings already turned with the barometric pressure that was read, or else that of the
-    site. With a `sheet`, expectations are the frozen ones. `upsets` names what makes the compressor heat balance wrong.
+    Pressures are absolute, gauge readings already turned with the barometric pressure that was read, or else that of
+    the site. With a `sheet`, expectations are the frozen ones. `upsets` names what makes the compressor heat balance
+    wrong (the keys of `routes.UPSETS`).
     """
     not_judged: dict[str, str] = {}
     asked, read = list(conditions), list(readings)
@@ -183,15 +186,13 @@ def _expectations(
     return expect(model, used)
 
 
-def _safely(make: object, not_judged: dict[str, str]) -> Mapping[str, Derived]:
-    assert callable(make)
+def _safely(make: Callable[[], Mapping[str, Derived]], not_judged: dict[str, str]) -> Mapping[str, Derived]:
     try:
-        found: Mapping[str, Derived] = make()
+        return make()
     except NotCalculatedError as error:
         for key in ("compressor_superheat", "subcooling"):
             not_judged[key] = str(error)
         return {}
-    return found
 
 
 def _shell(loaded: LoadedPlant, model: SystemModel) -> Measured:
@@ -223,21 +224,18 @@ def _routes(
     results: list[RouteResult] = []
     refusals: list[Refusal] = []
 
-    def attempt(route: str, key: str, make: object) -> None:
-        assert callable(make)
+    def attempt(route: Route, key: str, make: Callable[[], RouteResult]) -> None:
         try:
             results.append(make())
         except NotCalculatedError as error:
-            refusals.append(Refusal(route, key, str(error)))  # type: ignore[arg-type]
+            refusals.append(Refusal(route, key, str(error)))
 
+    balance = partial(
+        compressor_heat_balance, model.refrigerant, inputs, shell=shell, line_gain=gain,
+        compressor=system.compressor.type, upsets=upsets,
+    )  # fmt: skip
     for key in ("cooling_capacity", "heating_capacity"):
-        attempt(
-            "compressor heat balance", key,
-            lambda key=key: compressor_heat_balance(
-                model.refrigerant, inputs, key=key, shell=shell, line_gain=gain, compressor=system.compressor.type,
-                upsets=upsets,
-            ),
-        )  # fmt: skip
+        attempt("compressor heat balance", key, partial(balance, key=key))
     attempt("liquid side", "cooling_capacity", lambda: liquid_side(system.heat_source, "source", have))
     attempt("liquid side", "heating_capacity", lambda: liquid_side(system.heat_sink, "sink", have))
     air = loaded.barometric_pressure

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 from commission.acceptance.budget import Measured
 from commission.acceptance.choosing import choose_instrument
 from commission.acceptance.grid import Axis, interpolate, middles, points
-from commission.acceptance.guarantee import Terms, carry, terms_of
+from commission.acceptance.guarantee import Carried, Terms, carry, terms_of
 from commission.acceptance.instruments import Reading, measure
 from commission.acceptance.sheet import Target, TestSheet
 from commission.errors import InputError, NotCalculatedError, Problem, nearest
@@ -50,8 +50,8 @@ def make_sheet(
     """Freeze expectations and guarantees over a range of conditions.
 
     `ranges` gives for each condition of the range its grid values in SI, ascending; all other conditions are held as
-    designed. `keys` chooses the expectations (all that the model gives, where None). The largest error of reading between
-    the points is found at the middle of every cell and frozen with each target.
+    designed. `keys` chooses the expectations (all that the model gives, where None). The largest error of reading
+    between the points is found at the middle of every cell and frozen with each target.
 
     Raises:
         InputError: a condition that this system does not have, no value, or too many points.
@@ -96,7 +96,7 @@ def in_words(instrument: Instrument) -> dict[str, str]:
     words: dict[str, str] = {}
     for key, value in dumped.items():
         if isinstance(value, dict):
-            words.update({f"{key} {k}": str(v) for k, v in value.items()})
+            words.update({f"{key} {k}": f"{v * 100:g} %" if isinstance(v, float) else str(v) for k, v in value.items()})
         elif isinstance(value, bool):
             words[key] = "yes" if value else "no"
         else:
@@ -182,18 +182,20 @@ def _guarantee_targets(
 
 def _carrier(
     terms: Terms, model: SystemModel, loaded: LoadedPlant, held: Mapping[str, float]
-) -> Callable[[Mapping[str, float]], Any]:
+) -> Callable[[Mapping[str, float]], Carried]:
     points_of_supplier = loaded.system(model.system_id).rated_points
+    known = all(k in model.condition_axes for k in terms.at)
+    there = model.predict(dict(terms.at)) if known else None
 
-    def at(point: Mapping[str, float]) -> Any:
+    def at(point: Mapping[str, float]) -> Carried:
         conditions = {k: Measured(k, v) for k, v in {**held, **point}.items()}
-        return carry(terms, conditions, model, points_of_supplier)
+        return carry(terms, conditions, model, points_of_supplier, there)
 
     return at
 
 
 def _held_slopes(
-    at: Callable[[Mapping[str, float]], Any], terms: Terms, held: Mapping[str, float], centre: Mapping[str, float]
+    at: Callable[[Mapping[str, float]], Carried], terms: Terms, held: Mapping[str, float], centre: Mapping[str, float]
 ) -> dict[str, float]:
     """Change of a carried guarantee per unit of each held condition; only where the design model carries it."""
     if terms.carried_by != "design model":

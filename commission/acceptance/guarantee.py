@@ -16,7 +16,7 @@ from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 
 if TYPE_CHECKING:
     from commission.description.model import Conditions, Guarantee, RatedPoint
-    from commission.prediction import SystemModel
+    from commission.prediction import Prediction, SystemModel
 
 CarriedBy = Literal["design model", "supplier's table", "as stated"]
 DEFAULT_LARGEST_UNCERTAINTY = 0.05
@@ -53,7 +53,7 @@ class Terms:
         return value * (1.0 - (self.below or 0.0)), upper
 
     def largest_expanded_uncertainty(self, value: float) -> float:
-        """The expanded uncertainty up to which the simple rule is fair: the tolerance itself, which is meant to hold it.
+        """The expanded uncertainty up to which the simple rule is fair: the tolerance, which is meant to hold it.
 
         Where no tolerance is stated, the share of `DEFAULT_LARGEST_UNCERTAINTY`.
         """
@@ -94,22 +94,30 @@ def stated_conditions(conditions: Conditions) -> dict[str, float]:
 
 
 def carry(
-    terms: Terms, conditions: Mapping[str, Measured], model: SystemModel, rated_points: Sequence[RatedPoint] = ()
+    terms: Terms,
+    conditions: Mapping[str, Measured],
+    model: SystemModel,
+    rated_points: Sequence[RatedPoint] = (),
+    there: Prediction | None = None,
 ) -> Carried:
     """The guaranteed value at the measured condition, by the way that the contract states.
+
+    `there` is the prediction at the condition of the guarantee, for a caller that already has it.
 
     Raises:
         NotCalculatedError: the model has no solution there, the table does not reach, or the day is not the stated
             condition.
     """
     if terms.carried_by == "design model":
-        return by_model(terms, conditions, model)
+        return by_model(terms, conditions, model, there)
     if terms.carried_by == "supplier's table":
         return by_table(terms, conditions, rated_points)
     return as_stated(terms, conditions, model)
 
 
-def by_model(terms: Terms, conditions: Mapping[str, Measured], model: SystemModel) -> Carried:
+def by_model(
+    terms: Terms, conditions: Mapping[str, Measured], model: SystemModel, there: Prediction | None = None
+) -> Carried:
     """The guaranteed value times the ratio of the design model at the day's and at the guarantee's condition.
 
     Each part of the model uncertainty counts with the difference of its relative effects at the two conditions: what
@@ -122,7 +130,8 @@ def by_model(terms: Terms, conditions: Mapping[str, Measured], model: SystemMode
         if condition not in model.condition_axes:
             label = NOMENCLATURE[condition].label.lower()
             raise NotCalculatedError(f"the design model does not depend on {label}, which the guarantee states")
-    there, day = model.predict(dict(terms.at)), model.predict(day_values)
+    there = there or model.predict(dict(terms.at))
+    day = model.predict(day_values)
     for prediction in (there, day):
         if key not in prediction.expected:
             raise NotCalculatedError(prediction.not_calculated.get(key, f"the model does not calculate {key}"))
@@ -134,7 +143,8 @@ def by_model(terms: Terms, conditions: Mapping[str, Measured], model: SystemMode
         if change:
             part = model_component(model, cause, value * change, key)
             parts.append(replace(part, remedy="test nearer to the condition of the guarantee"))
-    slopes = model.sensitivities(day_values).get(key, {})
+    sure = not any(m.budget.components for m in used.values())
+    slopes = {} if sure else model.sensitivities(day_values).get(key, {})
     through = [m.budget.scaled(terms.value / base * slopes[k]) for k, m in used.items() if slopes.get(k)]
     budget = combine(Budget(tuple(parts)), *through)
     return _carried(terms, value, budget, "guarantee_by_model", used, Input("design model, ratio", now / base,
@@ -144,8 +154,8 @@ def by_model(terms: Terms, conditions: Mapping[str, Measured], model: SystemMode
 def by_table(terms: Terms, conditions: Mapping[str, Measured], rated_points: Sequence[RatedPoint]) -> Carried:
     """The guaranteed value times the ratio of the supplier's table at the day's and at the guarantee's condition.
 
-    The table is that of the rated points which state the quantity; it must be a full grid over the conditions that vary in
-    it and is read linearly along each. What lies between its points is the supplier's own: no uncertainty is added.
+    The table is that of the rated points which state the quantity; it must be a full grid over the conditions that vary
+    in it and is read linearly along each. What lies between its points is the supplier's own: no uncertainty is added.
     """
     axes, values = supplier_grid(terms.quantity, rated_points)
     base, _ = interpolate(axes, values, terms.at)
@@ -190,9 +200,10 @@ def _rated_value(quantity: str, point: RatedPoint) -> float | None:
 
 
 def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemModel) -> Carried:
-    """The guaranteed value itself, where the day is the stated condition: within 0.5 K (5 % otherwise) or the uncertainty.
+    """The guaranteed value itself, where the day is the stated condition.
 
-    What the rest of the difference may do comes into the budget through the sensitivities of the model.
+    That is: within 0.5 K (5 % of flows and speeds), or within the expanded uncertainty of the reading. What the rest
+    of the difference may do comes into the budget through the sensitivities of the model.
     """
     used = {}
     for key, wanted in terms.at.items():

@@ -46,15 +46,15 @@ class _Order:
 
 _ORDERS = (
     _Order("pressures", "discharge_pressure", "suction_pressure",
-           "a running compressor discharges at a higher pressure than it draws from: are the gauges swapped, or is it off?"),
+           "a running compressor discharges at a higher pressure than it draws from: gauges swapped, or is it off?"),
     _Order("source cools", "heat_source_inlet_temperature", "heat_source_outlet_temperature",
            "the heat source leaves warmer than it came, although heat is taken from it: are inlet and outlet swapped?"),
     _Order("sink warms", "heat_sink_outlet_temperature", "heat_sink_inlet_temperature",
            "the heat sink leaves colder than it came, although heat is given to it: are inlet and outlet swapped?"),
     _Order("source above evaporating", "heat_source_inlet_temperature", "evaporating_temperature",
-           "heat does not flow from a colder source to a warmer refrigerant (second law): suction gauge or air-on probe"),
+           "heat does not flow from a colder source to a warmer refrigerant (second law): suction gauge or probe"),
     _Order("condensing above sink", "condensing_temperature", "heat_sink_inlet_temperature",
-           "heat does not flow from a colder refrigerant to a warmer sink (second law): discharge gauge or air-on probe"),
+           "heat does not flow from a colder refrigerant to a warmer sink (second law): discharge gauge or probe"),
     _Order("discharge above sink outlet", "discharge_temperature", "heat_sink_outlet_temperature",
            "the heat sink leaves hotter than the hottest refrigerant (second law)"),
     _Order("discharge above suction", "discharge_temperature", "suction_temperature",
@@ -63,12 +63,12 @@ _ORDERS = (
            "the liquid before the expansion device is colder than the evaporating temperature"),
 )  # fmt: skip
 _POSITIVE = (
-    ("superheat", "compressor_superheat", "vapour at the suction port cannot be colder than its dew point; wet suction reads "
-     "zero, never less: gauge, probe, or another refrigerant than stated"),
-    ("superheat at the evaporator", "superheat", "vapour cannot be colder than its dew point; wet vapour reads zero, never "
-     "less: gauge, probe, or another refrigerant than stated"),
-    ("subcooling", "subcooling", "liquid cannot be warmer than its bubble point; flash gas reads zero, never less: gauge, "
-     "probe, gas that does not condense, or another refrigerant than stated"),
+    ("superheat", "compressor_superheat", "vapour at the suction port cannot be colder than its dew point; wet suction "
+     "reads zero, never less: gauge, probe, or another refrigerant than stated"),
+    ("superheat at the evaporator", "superheat", "vapour cannot be colder than its dew point; wet vapour reads zero, "
+     "never less: gauge, probe, or another refrigerant than stated"),
+    ("subcooling", "subcooling", "liquid cannot be warmer than its bubble point; flash gas reads zero, never less: "
+     "gauge, probe, a pressure loss before the valve, or another refrigerant than stated"),
     ("flow", "refrigerant_flow", "the refrigerant flow is negative"),
     ("power", "power_input", "the power input is negative"),
     ("compressor power", "compressor_power", "the compressor power is negative"),

@@ -151,8 +151,8 @@ def instrument_budget(
 ) -> Budget:
     """Uncertainty of one reading of quantity `key` (a nomenclature key) with value `value` in SI.
 
-    Largest permissible errors are rectangular (JCGM 100, 4.3.7), a resolution is rectangular over one step (F.2.2.1), the
-    spread of samples is type A (4.2.3). A gauge counts from the air pressure `barometric` (Pa), whose own standard
+    Largest permissible errors are rectangular (JCGM 100, 4.3.7), a resolution is rectangular over one step (F.2.2.1),
+    the spread of samples is type A (4.2.3). A gauge counts from the air pressure `barometric` (Pa), whose own standard
     uncertainty in Pa is `barometric_standard` (from the library where None) and is shared by all gauges. A matched
     pair shares its class error, so that it cancels in a difference. `drift_per_year` (SI) adds the largest drift since
     calibration; nothing is assumed where it is not stated. `name` is the id of the instrument.

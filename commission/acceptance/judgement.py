@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import datetime as dt
-from collections.abc import Collection, Iterable, Mapping
+from collections.abc import Callable, Collection, Iterable, Mapping
 from dataclasses import dataclass
+from functools import partial
 from typing import TYPE_CHECKING, Any, Literal
 
 from commission.acceptance.budget import Budget, Measured, combine
@@ -33,8 +34,8 @@ Mode = Literal["trim", "test"]
 class GuaranteeVerdict:
     """One guarantee judged. `guaranteed` is the value on the day, None where it could not be carried there.
 
-    `budget` is that of measured value minus limit, shared causes kept. `withheld` says why there is no verdict although a
-    test was made: readings that cannot be, a plant that did not stand still, a route that was refused.
+    `budget` is that of measured value minus limit, shared causes kept. `withheld` says why there is no verdict although
+    a test was made: readings that cannot be, a plant that did not stand still, a route that was refused.
     """
 
     terms: Terms
@@ -111,9 +112,9 @@ def judge(
 ) -> Judgement:
     """Judge the readings of one visit.
 
-    In *trim* there are deviations only. In a *test* each guarantee gets one verdict: from the frozen sheet where there is
-    one, otherwise from the description as it stands. Times in s; `limits` names a set of steadiness limits; `on` is the
-    day, for the calibrations. Readings: SI, pressures absolute.
+    In *trim* there are deviations only. In a *test* each guarantee gets one verdict: from the frozen sheet where there
+    is one, otherwise from the description as it stands. Times in s; `limits` names a set of steadiness limits; `on` is
+    the day, for the calibrations. Readings: SI, pressures absolute.
 
     Raises:
         InputError: a condition that this system does not have.
@@ -155,24 +156,24 @@ def _verdicts(
     loaded: LoadedPlant, model: SystemModel, found: Evaluation, sheet: TestSheet | None, withheld: str | None
 ) -> list[GuaranteeVerdict]:
     if sheet is not None:
-        targets = sheet.targets_for("guarantee")
         return [
-            verdict(t.terms, found, lambda t=t: sheet.carried(t, found.conditions), withheld, frozen=True)  # type: ignore[misc]
-            for t in targets
+            verdict(t.terms, found, partial(sheet.carried, t, found.conditions), withheld, frozen=True)
+            for t in sheet.targets_for("guarantee")
             if t.terms is not None
         ]
     system = loaded.system(model.system_id)
-    all_terms = [terms_of(g) for g in system.guarantee]
     return [
-        verdict(
-            terms, found, lambda terms=terms: carry(terms, found.conditions, model, system.rated_points), withheld  # type: ignore[misc]
-        )
-        for terms in all_terms
-    ]  # fmt: skip
+        verdict(terms, found, partial(carry, terms, found.conditions, model, system.rated_points), withheld)
+        for terms in map(terms_of, system.guarantee)
+    ]
 
 
 def verdict(
-    terms: Terms, found: Evaluation, carried_by: Any, withheld: str | None = None, frozen: bool = False
+    terms: Terms,
+    found: Evaluation,
+    carried_by: Callable[[], Carried],
+    withheld: str | None = None,
+    frozen: bool = False,
 ) -> GuaranteeVerdict:
     """One guarantee judged by the evaluated readings; `carried_by()` gives the guaranteed value of the day."""
     try:
@@ -181,7 +182,7 @@ def verdict(
         reason = f"{NOMENCLATURE[terms.quantity].label.lower()} could not be measured: {error}"
         return GuaranteeVerdict(terms, None, None, terms.route, None, None, withheld or reason, frozen)
     try:
-        carried: Carried = carried_by()
+        carried = carried_by()
     except NotCalculatedError as error:
         return GuaranteeVerdict(terms, None, measured, route, None, None, withheld or str(error), frozen)
     decision, budget = decide_guarantee(terms, measured, carried)
@@ -192,7 +193,7 @@ def verdict(
 def decide_guarantee(terms: Terms, measured: Measured, carried: Carried) -> tuple[Decision, Budget]:
     """The decision on a measured value and a carried guarantee, and the budget it was made with.
 
-    The carried limit is uncertain too (condition, model); what measured value and limit share cancels as far as it does.
+    The carried limit is uncertain too (condition, model); what measured value and limit share cancels.
     """
     lower, upper = terms.limits(carried.value)
     binding = lower if upper is None or (lower is not None and measured.value < 0.5 * (lower + upper)) else upper

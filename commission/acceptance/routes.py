@@ -1,12 +1,13 @@
 """Ways to measure capacity and COP on site, each with its budget and its refusals.
 
-Compressor heat balance: Nordtest NT VVS 115 and NT VVS 116; P. Fahlén, field testing of refrigeration and heat pump equipment
-(the internal method). Liquid side and air side: flow times density times heat capacity times temperature change, the
-definition that EN 14511-3 and ISO 916 use.
+Compressor heat balance: Nordtest NT VVS 115 and NT VVS 116; P. Fahlén, field testing of refrigeration and heat pump
+equipment (the internal method). Liquid side and air side: flow times density times heat capacity times temperature
+change, the definition that EN 14511-3 and ISO 916 use.
 """
 
 from __future__ import annotations
 
+import math
 from collections.abc import Collection, Mapping
 from dataclasses import dataclass
 from functools import cache
@@ -27,11 +28,11 @@ Route = Literal["compressor heat balance", "liquid side", "air side", "electric 
 Side = Literal["source", "sink"]
 SHELL = "shell_heat_loss_share"
 UPSETS: Mapping[str, str] = {
-    "liquid injection": "liquid is injected into the compression: its enthalpy balance is not that of suction and discharge",
+    "liquid injection": "liquid is injected into the compression: a second flow enters the balance",
     "vapour injection": "vapour is injected into the compression: a second flow enters the balance",
     "hot gas bypass": "hot gas is bypassed: part of the compressor's flow never sees the evaporator",
     "oil cooling": "oil takes heat out of the compressor: its power does not all go into the gas",
-    "water-cooled compressor": "a water jacket takes heat out of the compressor: its power does not all go into the gas",
+    "water-cooled compressor": "a water jacket takes heat out: the power does not all go into the gas",
 }
 """What makes the compressor heat balance wrong, and why."""
 
@@ -113,9 +114,9 @@ def compressor_heat_balance(
 
     Flow = P (1 - f) / (h2 - h1); cooling capacity = flow (h_e - h4); heating capacity = flow (h2 - h4), with h1 at the
     suction port, h2 at the discharge port, h4 of the liquid (saturated liquid at its temperature: its pressure hardly
-    counts), h_e at the evaporator outlet: the suction state less the warming `line_gain` of the suction line in K
-    (none where not given). P is the electric power of a motor cooled by the suction gas, f the share lost through
-    the shell (Nordtest NT VVS 115 and 116).
+    counts), h_e at the evaporator outlet: the suction temperature less the warming `line_gain` of the suction line in
+    K (none where not given), at the pressure of the evaporating temperature where that is among the readings. P is the
+    electric power of a motor cooled by the suction gas, f the share lost through the shell (Nordtest NT VVS 115, 116).
 
     Raises:
         NotCalculatedError: a reading is missing, or the balance does not hold here (the reason is said).
@@ -142,18 +143,29 @@ def compressor_heat_balance(
         "power": readings["compressor_power"],
         "share": shell or shell_share(),
         "gain": line_gain or Measured("line gain", 0.0),
+        "te": readings.get("evaporating_temperature", Measured("not read", math.nan)),
         "method": _relative("compressor heat balance", "method", "limits of the compressor heat balance"),
     }
     heating = key == "heating_capacity"
 
     def capacity(
-        ps: float, ts: float, pd: float, td: float, tl: float, power: float, share: float, gain: float, method: float
+        ps: float,
+        ts: float,
+        pd: float,
+        td: float,
+        tl: float,
+        power: float,
+        share: float,
+        gain: float,
+        te: float,
+        method: float,
     ) -> float:
         h1, h2 = refrigerant.vapour(ts, ps).h, refrigerant.vapour(td, pd).h
         if h2 <= h1:
             raise NotCalculatedError("the discharge gas holds no more heat than the suction gas: a reading is wrong")
         flow = power * (1.0 - share) / (h2 - h1)
-        hot = h2 if heating else refrigerant.vapour(ts - gain, ps).h
+        pe = ps if math.isnan(te) else refrigerant.dew(te).p
+        hot = h2 if heating else refrigerant.vapour(ts - gain, pe).h
         return method * flow * (hot - _liquid_enthalpy(refrigerant, tl, pd))
 
     method = "compressor_heat_balance_heating" if heating else "compressor_heat_balance_cooling"
@@ -188,7 +200,7 @@ def _refuse_flash_gas(readings: Mapping[str, Measured]) -> None:
 def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) -> RouteResult:
     """Heat taken from a liquid source or given to a liquid sink, from its flow and temperatures.
 
-    Q = V rho(T_in) cp(T_mean) |T_in - T_out|; the flow is a volume flow at the inlet state (as the nomenclature says). For
+    Q = V rho(T_in) cp(T_mean) |T_in - T_out|; the flow is a volume flow at the inlet state (see the nomenclature). For
     glycol the mass fraction adds its part; a matched pair of probes shares its error, which cancels here.
 
     Raises:
@@ -226,7 +238,7 @@ def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) ->
 def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[str, Measured]) -> RouteResult:
     """Heat taken from or given to air that neither loses nor gains water, from its flow and temperatures.
 
-    Q = V rho_dry(T_in) cp |T_in - T_out| with cp per kg of dry air. Refused where a coil may be wet: the outlet humidity
+    Q = V rho_dry(T_in) cp |T_in - T_out|, cp per kg of dry air. Refused where a coil may be wet: the outlet humidity
     is not read, so the latent heat would be missing.
 
     Raises:
@@ -267,8 +279,8 @@ def _refuse_wet_coil(readings: Mapping[str, Measured], humidity: Measured | None
     air = moist_air(readings["heat_source_inlet_temperature"].value, barometric, relative_humidity=humidity.value)
     if air.dew_point > evaporating.value:
         raise NotCalculatedError(
-            "the coil is wet (the dew point of the air lies above the evaporating temperature), and the humidity of the "
-            "air that leaves it is not read"
+            "the coil is wet (the dew point of the air lies above the evaporating temperature), and the humidity of "
+            "the air that leaves it is not read"
         )
 
 

@@ -1,7 +1,7 @@
 """The test sheet: targets over the range of the day, frozen into a text that both sides sign before the test.
 
-Whatever changes later, in the description, an assumption, the tool or the property library, a test with a sheet is judged by the
-numbers of the sheet. Its first line holds the SHA-256 digest of all that follows, so that a change is seen.
+Whatever changes later, in the description, an assumption, the tool or the property library, a test with a sheet is
+judged by the numbers of the sheet. Its first line holds the SHA-256 digest of all that follows, so that a change shows.
 """
 
 from __future__ import annotations

@@ -22,8 +22,8 @@ Side = Literal["below", "above", "both"]
 class LibraryTolerance:
     """One entry of the library.
 
-    `value` is a number, None where it is a formula or a band; `unit` is empty for a share of the stated value; `formula`
-    and `figures` hold what is not one number; `check` warns where the figure is not sure.
+    `value` is a number, None where it is a formula or a band; `unit` is empty for a share of the stated value;
+    `formula` and `figures` hold what is not one number; `check` warns where the figure is not sure.
     """
 
     key: str

@@ -1,8 +1,8 @@
 """Makes the file of vectors that the Python and the JavaScript decision must both answer.
 
 `python -m commission.acceptance.vectors FOLDER` writes `tests/acceptance/decision_vectors.json` and
-`site_templates/scripts/decision_vectors.js` below FOLDER. The answers come from the Python side; they are held to published
-examples and to simulation by the tests beside the file.
+`site_templates/scripts/decision_vectors.js` below FOLDER. The answers come from the Python side; they are held to
+published examples and to simulation by the tests beside the file.
 """
 
 from __future__ import annotations
@@ -82,8 +82,8 @@ def files() -> Mapping[str, str]:
     page = json.dumps(page_vectors(), indent=1)
     return {
         "tests/acceptance/decision_vectors.json": json.dumps(vectors(), indent=1) + "\n",
-        "site_templates/scripts/decision_vectors.js": "/* Made by python -m commission.acceptance.vectors: change nothing "
-        f"here by hand. */\nvar commissionDecisionVectors = {page};\n",
+        "site_templates/scripts/decision_vectors.js": "/* Made by python -m commission.acceptance.vectors: change "
+        f"nothing here by hand. */\nvar commissionDecisionVectors = {page};\n",
     }
 
 
