@@ -10,8 +10,9 @@ LOWEST, HIGHEST = -2000.0, 11000.0  # m; the layer of ISO 2533 with constant lap
 def barometric_pressure(altitude: float) -> float:
     """Pressure (Pa) of the standard atmosphere at `altitude` (m above sea level, taken as geopotential).
 
-    p = 101325 (1 - 2.25577e-5 z)^5.2559: ISO 2533:1975 for the lowest layer, in the form of ASHRAE Handbook Fundamentals 2017,
-    chapter 1, equation 3. Weather moves the true pressure by some 30 hPa either way: where it matters, read a barometer.
+    p = 101325 (1 - 2.25577e-5 z)^5.2559: ISO 2533:1975 for the lowest layer, in the form of ASHRAE Handbook
+    Fundamentals 2017, chapter 1, equation 3. Weather moves the true pressure by some 30 hPa either way: where it
+    matters, read a barometer.
 
     Raises:
         PropertyRangeError: outside -2000 m to 11000 m.

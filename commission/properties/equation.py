@@ -1,7 +1,8 @@
 """The equation of state behind one refrigerant: calls at (density, temperature) and Newton iterations on them.
 
 Density and temperature are the natural variables of a Helmholtz equation, so such a call needs no iteration, cannot
-fail, and gives all first derivatives for a few microseconds more (Span, Multiparameter Equations of State, 2000, chapter 3).
+fail, and gives all first derivatives for a few microseconds more (Span, Multiparameter Equations of State, 2000,
+chapter 3).
 """
 
 from __future__ import annotations
@@ -15,14 +16,15 @@ from commission.properties.coolprop import load
 from commission.properties.errors import PropertyRangeError, bar, celsius
 from commission.properties.lines import FluidData
 
-SMALL_STEP = 1e-6  # a Newton step this small is closed by the first-order correction: the rest is 1e-12
+SMALL_STEP = 1e-5  # a Newton step this small is closed by the first-order correction: what is left is 1e-10
 MAX_STEPS = 50
 GAS_CONSTANT = 8.314462618  # J/(mol K), CODATA 2018
 
 
 @dataclass(slots=True)
 class Point:
-    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K); `_t` is by temperature."""
+    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K); `_t` is by
+    temperature."""
 
     rho: float
     T: float

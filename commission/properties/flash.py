@@ -1,7 +1,7 @@
 """Two phases of a mixture at a given pressure and molar vapour fraction; unknowns T, both densities, ln K of each.
 
-Michelsen & Mollerup, Thermodynamic Models: Fundamentals & Computational Aspects, 2nd ed. 2007, chapter 12 (full Newton on
-the equal-fugacity equations). Used to make the tables of the two-phase region only.
+Michelsen & Mollerup, Thermodynamic Models: Fundamentals & Computational Aspects, 2nd ed. 2007, chapter 12 (full
+Newton on the equal-fugacity equations). Used to make the tables of the two-phase region only.
 """
 
 from __future__ import annotations

@@ -25,6 +25,7 @@ TERMS = 33
 PRESSURE_NODES, FRACTION_NODES, FLASH_NODES = 14, 10, 12
 ATMOSPHERE = 101325.0
 EASY_REDUCED = 0.7
+MINOR_FRACTION = 0.1  # mole
 LOWEST_REDUCED = 0.5  # of the critical temperature: below any refrigerating duty of the fluid
 PURE_TOP, BLEND_MARGIN = 0.9995, 2.0  # share of Tc, and K below Tc: nearer, the two phases merge in the last digits
 IIR_TEMPERATURE, IIR_ENTHALPY, IIR_ENTROPY = 273.15, 200e3, 1000.0
@@ -46,11 +47,12 @@ def build(
     fractions = tuple((moles / moles.sum()).tolist())
     phases = Phases(fluids, fractions)
     Tc, pc = critical
-    # the equation of a component below its triple point is an extrapolation, so a blend ends at the highest of them
-    T_triple = max(s.Tmin() for s in states)
+    # A blend ends where the equation of a main component does. A minor one (carbon dioxide in R-455A) does not set the
+    # limit: its equation enters at the reduced temperature of the blend, and by ideal solubility it stays dissolved.
+    T_triple = max(s.Tmin() for s, x in zip(states, fractions, strict=True) if x >= MINOR_FRACTION)
     T_low = max(T_triple, LOWEST_REDUCED * Tc)
     T_high = PURE_TOP * Tc if len(fluids) == 1 else Tc - BLEND_MARGIN
-    dew, bubble = (_line(phases, incipient, Tc, T_low, T_high) for incipient in ("liquid", "vapour"))
+    dew, bubble = _lines(phases, Tc, T_low, T_high)
     _check(refrigerant, dew, bubble)
     datum = bubble.row(IIR_TEMPERATURE)
     offsets = (IIR_ENTHALPY - datum[1], IIR_ENTROPY - datum[2])
@@ -83,16 +85,23 @@ def build(
     )
 
 
-def _line(phases: Phases, incipient: str, Tc: float, T_low: float, T_high: float) -> lines.Line:
+def _lines(phases: Phases, Tc: float, T_low: float, T_high: float) -> tuple[lines.Line, lines.Line]:
+    """Dew and bubble line; those of a pure fluid come from one solution, so that they share every pressure."""
     low, high = math.sqrt(1 - T_high / Tc), math.sqrt(1 - T_low / Tc)
     theta = (high - low) / 2 * lines.nodes(TERMS) + (high + low) / 2
     temperatures = Tc * (1 - theta**2)
-    values = np.empty((4, TERMS))
-    for k, point in enumerate(_trace(phases, incipient, temperatures)):
-        own = "liquid" if incipient == "vapour" else "vapour"
-        _, h, s, rho = phases.properties(point.T, getattr(point, f"rho_{own}"), own)
-        values[:, k] = math.log(point.p), h, s, math.log(rho)
-    return lines.Line(Tc, T_low, T_high, lines.series_at_nodes(values))
+    dew = _trace(phases, "liquid", temperatures)
+    bubble = dew if phases.n == 1 else _trace(phases, "vapour", temperatures)
+    pair = [
+        lines.Line(Tc, T_low, T_high, lines.series_at_nodes(np.array([_row(phases, q, phase) for q in points]).T))
+        for points, phase in ((dew, "vapour"), (bubble, "liquid"))
+    ]
+    return pair[0], pair[1]
+
+
+def _row(phases: Phases, point: Equilibrium, phase: str) -> tuple[float, float, float, float]:
+    _, h, s, rho = phases.properties(point.T, getattr(point, f"rho_{phase}"), phase)
+    return math.log(point.p), h, s, math.log(rho)
 
 
 def _check(refrigerant: str, dew: lines.Line, bubble: lines.Line) -> None:
@@ -154,22 +163,22 @@ def _two_phase(phases: Phases, pc: float, dew: lines.Line, bubble: lines.Line) -
     tables = np.array([_isobar(phases, p, bubble) for p in pc * np.exp(-(w**2))])  # pressure, table, fraction
     in_fraction = lines.series_at_nodes(tables)
     both = np.moveaxis(lines.series_at_nodes(np.moveaxis(in_fraction, 0, -1)), -1, 0)
-    return lines.TwoPhase(pc, low, high, both[:, 0], both[:, 1], both[:, 2])
+    return lines.TwoPhase(pc, low, high, both)
 
 
 def _isobar(phases: Phases, p: float, bubble: lines.Line) -> Array:
-    """Deviations from a straight line of temperature, vapour mass and volume at the enthalpy fractions of the table."""
+    """Deviations from a straight line, in the order of `lines.TABLES`, at the enthalpy fractions of the table."""
     start, u = phases.solve(bubble.temperature(p), "vapour")
     u = flash.start_at_bubble(start)
     fractions = np.concatenate([[0.0], (1 - lines.nodes(FLASH_NODES)) / 2, [1.0]])
     rows = []
     for fraction in fractions:
         point, u = flash.solve(phases, p, float(fraction), u)
-        h, _, v, q = flash.bulk(phases, point)
-        rows.append((h, point.T, q, v))
-    h, T, q, v = np.array(rows).T
-    x = (h - h[0]) / (h[-1] - h[0])
-    straight = np.array([T - (T[0] + x * (T[-1] - T[0])), q - x, (v - v[0]) / (v[-1] - v[0]) - x])
+        h, s, v, q = flash.bulk(phases, point)
+        rows.append((h, point.T, q, v, s))
+    h, T, q, v, s = np.array(rows).T
+    x, share_v, share_s = ((a - a[0]) / (a[-1] - a[0]) for a in (h, v, s))
+    straight = np.array([T - (T[0] + x * (T[-1] - T[0])), q - x, share_v - x, share_s - x])
     # values at the wanted enthalpy fractions: a polynomial through the flashes, in the molar fraction found by Newton
     c = 2 * fractions - 1
     to_x = chebyshev.chebfit(c, x, len(c) - 1)

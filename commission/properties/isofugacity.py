@@ -3,8 +3,8 @@
 CoolProp's own temperature-quality flashes fail on blends at scattered ordinary temperatures, so the equilibrium is
 solved here from Helmholtz energies alone: unknowns are the logarithms of both densities and the composition of the
 phase that appears; equations are equal pressure and equal fugacity of each component (Michelsen & Mollerup,
-Thermodynamic Models: Fundamentals & Computational Aspects, 2nd ed. 2007, chapters 1 and 12). Used to make the saturation
-lines and the tables of the two-phase region, never while an operating point is solved.
+Thermodynamic Models: Fundamentals & Computational Aspects, 2nd ed. 2007, chapters 1 and 12). Used to make the
+saturation lines and the tables of the two-phase region, never while an operating point is solved.
 """
 
 from __future__ import annotations
@@ -145,8 +145,8 @@ class Phases:
     def _point(self, u: Array, T: float, incipient: str) -> Equilibrium:
         x, y = self._phases(u, incipient)
         rho_l, rho_v = float(np.exp(u[0])), float(np.exp(u[1]))
-        own, rho, z = (self.liquid, rho_l, x) if incipient == "vapour" else (self.vapour, rho_v, y)
-        p = float(self.evaluate(own, rho, T, z)[-1])
+        # the pressure of the vapour: that of a liquid has lost digits to its steepness
+        p = float(self.evaluate(self.vapour, rho_v, T, y)[-1])
         return Equilibrium(T, p, rho_l, rho_v, tuple(x), tuple(y), 0.0 if incipient == "vapour" else 1.0)
 
     def properties(self, T: float, rho: float, phase: str) -> tuple[float, float, float, float]:

@@ -78,7 +78,7 @@ class Line:
 
     @cached_property
     def _inverse(self) -> Chebyshev1:
-        """ln p to sqrt(1 - T/Tc): a start for `temperature`, good to about 1e-6 K."""
+        """The scaled variable against ln p, good to 1e-8 K."""
         top = float(self.coefficients[0] @ np.cos(self._orders * math.pi))  # ln p at T_high
         bottom = float(self.coefficients[0].sum())
         # beyond the end by the slope there, so that the variable keeps its square-root character near critical
@@ -93,7 +93,7 @@ class Line:
             t = np.clip(
                 t - (chebyshev.chebval(t, self.coefficients[0]) - wanted) / chebyshev.chebval(t, derivative), -1, 1
             )
-        return Chebyshev1(pivot, lo, hi, chebyshev.chebfit(x, t, size - 1))
+        return Chebyshev1(pivot, lo, hi, np.asarray(chebyshev.chebfit(x, t, size - 1), dtype=np.float64))
 
     @property
     def ln_p_range(self) -> tuple[float, float]:
@@ -102,13 +102,8 @@ class Line:
 
     def temperature(self, p: float) -> float:
         """Temperature (K) of the line at pressure `p` (Pa), which the caller has checked to lie on it."""
-        target = math.log(p)
-        x = min(1.0, max(-1.0, self._inverse(target)))
-        angle = math.acos(x)
-        terms = np.cos(self._orders * angle)
-        x -= (float(self.coefficients[0] @ terms) - target) / float(self._slopes[0] @ terms)
         slope, offset = self._scale
-        T = self.T_critical * (1.0 - ((x + offset) / slope) ** 2)
+        T = self.T_critical * (1.0 - ((self._inverse(math.log(p)) + offset) / slope) ** 2)
         return min(self.T_high, max(self.T_low, T))  # rounding at the ends only
 
 
@@ -121,35 +116,38 @@ class Chebyshev1:
     hi: float
     coefficients: Array
 
+    @cached_property
+    def _orders(self) -> Array:
+        return np.arange(len(self.coefficients), dtype=np.float64)
+
     def __call__(self, ln_p: float) -> float:
         x = (2.0 * math.sqrt(max(self.pivot - ln_p, 0.0)) - self.hi - self.lo) / (self.hi - self.lo)
         angle = math.acos(min(1.0, max(-1.0, x)))
-        return float(self.coefficients @ np.cos(np.arange(len(self.coefficients)) * angle))
+        return float(self.coefficients.dot(np.cos(self._orders * angle)))
+
+
+TABLES = ("temperature", "quality", "volume", "entropy")
 
 
 @dataclass(frozen=True)
 class TwoPhase:
     """What a blend does between bubble and dew at constant pressure, against the enthalpy fraction x (0 bubble, 1 dew).
 
-    Three tables over (sqrt(ln(pc/p)), x): temperature less the straight line (K), mass fraction of vapour less x, and
-    the fraction of the volume change less x. All vanish at both ends.
+    Four series over (sqrt(ln(pc/p)), x), in the order of `TABLES`: temperature less the straight line (K), mass
+    fraction of vapour less x, and the fractions of the changes of volume and entropy less x. All vanish at both ends.
+    `tables` has the shape (terms in pressure, 4, terms in x).
     """
 
     p_critical: float
     low: float
     high: float
-    temperature: Array
-    quality: Array
-    volume: Array
+    tables: Array
 
-    def _terms(self, p: float, size: int) -> Array:
+    def series(self, p: float) -> Array:
+        """Chebyshev coefficients in 2x - 1 of the four tables at pressure `p` (Pa): shape (4, terms in x)."""
         w = (2.0 * math.sqrt(math.log(self.p_critical / p)) - self.high - self.low) / (self.high - self.low)
-        return np.asarray(np.cos(np.arange(size) * math.acos(min(1.0, max(-1.0, w)))))
-
-    def series(self, p: float) -> tuple[Array, Array, Array]:
-        """Chebyshev coefficients in 2x - 1 of the three tables at pressure `p` (Pa)."""
-        terms = self._terms(p, self.temperature.shape[0])
-        return terms @ self.temperature, terms @ self.quality, terms @ self.volume
+        terms = np.cos(np.arange(len(self.tables)) * math.acos(min(1.0, max(-1.0, w))))
+        return np.asarray(np.tensordot(terms, self.tables, 1))
 
 
 @dataclass(frozen=True)
@@ -189,7 +187,7 @@ class FluidData:
             plain["two_phase"] = {
                 "low": self.two_phase.low,
                 "high": self.two_phase.high,
-                **{k: getattr(self.two_phase, k).tolist() for k in ("temperature", "quality", "volume")},
+                **{k: self.two_phase.tables[:, i].tolist() for i, k in enumerate(TABLES)},
             }
         return plain
 
@@ -199,18 +197,16 @@ class FluidData:
         ends = plain["T_critical"], plain["T_low"], plain["T_high"]
         lines = {n: Line(*ends, np.array([plain[n][c] for c in COLUMNS])) for n in ("dew", "bubble")}
         table = plain.get("two_phase")
-        two_phase = table and TwoPhase(
-            plain["p_critical"],
-            table["low"],
-            table["high"],
-            *(np.array(table[k]) for k in ("temperature", "quality", "volume")),
-        )
-        scalars = {
+        two_phase = None
+        if table is not None:
+            tables = np.stack([np.array(table[k]) for k in TABLES], axis=1)
+            two_phase = TwoPhase(plain["p_critical"], table["low"], table["high"], tables)
+        scalars: dict[str, Any] = {
             k: tuple(v) if isinstance(v, list) else v
             for k, v in plain.items()
             if k not in ("dew", "bubble", "two_phase", "about")
         }
-        return cls(**scalars, **lines, two_phase=two_phase)
+        return cls(**scalars, dew=lines["dew"], bubble=lines["bubble"], two_phase=two_phase)
 
 
 def file_name(refrigerant: str) -> str:

@@ -28,8 +28,8 @@ _WATER = (-5.8002206e3, 1.3914993, -4.8640239e-2, 4.1764768e-5, -1.4452093e-8, 0
 class MoistAir:
     """A state of moist air.
 
-    T (K, dry bulb), p (Pa, barometric), W (kg water per kg dry air), h (J per kg dry air), density (kg dry air per m3 of
-    moist air), cp (J/(K kg dry air)), relative_humidity (0 to 1).
+    T (K, dry bulb), p (Pa, barometric), W (kg water per kg dry air), h (J per kg dry air), density (kg dry air per m3
+    of moist air), cp (J/(K kg dry air)), relative_humidity (0 to 1).
     """
 
     T: float
@@ -47,7 +47,8 @@ class MoistAir:
 
     @property
     def dew_point(self) -> float:
-        """Temperature (K) at which water or frost begins to form. Air without water has none: 0 K, colder than any coil."""
+        """Temperature (K) at which water or frost begins to form. Air without water has none: 0 K, colder than any
+        coil."""
         return dew_point(self.vapour_pressure)
 
     @property
@@ -137,7 +138,8 @@ def dew_point(vapour_pressure: float) -> float:
     """Temperature (K) at which `vapour_pressure` (Pa) is saturated; 0 K for a pressure of zero.
 
     Raises:
-        PropertyRangeError: above that of 200 °C or negative. Below that of -100 °C the equation of ice is followed down.
+        PropertyRangeError: above that of 200 °C or negative. Below that of -100 °C the equation of ice is followed
+        down.
     """
     if vapour_pressure == 0:
         return 0.0

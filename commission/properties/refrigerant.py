@@ -21,14 +21,16 @@ if TYPE_CHECKING:
     from commission.properties.two_phase import WetIsobar
 
 NEAR_CRITICAL = 0.97  # of the critical temperature: above, small errors of a model become large ones of its pressures
-EDGE = 1e-9  # relative; a state this close to a line counts as on it, since lines are exact to about this
+EDGE = 1e-8  # relative; a state this close to a line counts as on it, since lines are exact to about this
 
 
 class Refrigerant:
     """One refrigerant of the register. Make it with `refrigerant(name)`.
 
-    Temperatures in K, pressures in Pa absolute, J/kg, kg/m3. Enthalpy 200 kJ/kg and entropy 1 kJ/(kg K) in the liquid at
-    its bubble point at 0 °C (IIR reference). A Refrigerant may be used from several threads; each thread has its own
+    Temperatures in K, pressures in Pa absolute, J/kg, kg/m3. Enthalpy 200 kJ/kg and entropy 1 kJ/(kg K) in the liquid
+    at its bubble point at 0 °C (IIR reference). `T_low`..`T_high` is where the saturation lines are known; `T_triple`
+    the triple point, or for a blend the temperature below which the equation of a main component ends; `T_max` where
+    the equation of state ends. A Refrigerant may be used from several threads; each thread has its own
     equation-of-state object and its own count of `calls`.
 
     Errors: `PropertyRangeError` outside the limits. Warnings stand in the states that are returned.
@@ -110,7 +112,7 @@ class Refrigerant:
             PropertyRangeError: `p` outside the line.
         """
         self._need_pressure(p, self.p_bubble_low, self.p_bubble_high)
-        return self._bubble.temperature(p)
+        return (self._bubble if self.is_blend else self._dew).temperature(p)
 
     def dew_slopes(self, T: float) -> SaturationSlopes:
         """Derivatives along the dew line at `T` (K). Raises PropertyRangeError outside the line."""
@@ -157,7 +159,8 @@ class Refrigerant:
         """Superheated vapour, or gas above the critical pressure of a pure fluid, at `T` (K) and `p` (Pa).
 
         Raises:
-            PropertyRangeError: below the dew line, colder than `T_low`, hotter than `T_max`, or a blend above the end of
+            PropertyRangeError: below the dew line, colder than `T_low`, hotter than `T_max`, or a blend above the end
+            of
                 its dew line.
         """
         self._need_gas_temperature(T)
@@ -236,7 +239,8 @@ class Refrigerant:
         if not self.T_low <= T <= self.T_max:
             raise PropertyRangeError(
                 self.name,
-                f"{celsius(T)} is outside {celsius(self.T_low)} to {celsius(self.T_max)}, where the equation of state holds",
+                f"{celsius(T)} is outside {celsius(self.T_low)} to {celsius(self.T_max)}, "
+                "where the equation of state holds",
             )
 
     def _need_below_highest_pressure(self, p: float) -> None:
@@ -282,7 +286,8 @@ class Refrigerant:
         return isobar.state(x)
 
     def mean_evaporating_temperature(self, p: float, h_in: float) -> float:
-        """Temperature (K) at which the refrigerant takes up heat at `p` (Pa), averaged over that heat from `h_in` to dew.
+        """Temperature (K) at which the refrigerant takes up heat at `p` (Pa), averaged over that heat from `h_in` to
+        dew.
 
         This is the average over enthalpy, so that heat = conductance x difference holds to first order; the mean of
         inlet and dew temperature differs from it by up to 1 K for a blend of large glide.
@@ -301,9 +306,8 @@ class Refrigerant:
 
         self._need_pressure(p, self.p_bubble_low, self.p_dew_high)
         T_dew = self._dew.temperature(p)
-        dew = self._saturation(self._dew, T_dew)
-        bubble = self._saturation(self._bubble, self._bubble.temperature(p) if self.is_blend else T_dew)
-        return WetIsobar(bubble, dew, self._data.two_phase)
+        T_bubble = self._bubble.temperature(p) if self.is_blend else T_dew
+        return WetIsobar(_at_pressure(self._bubble, T_bubble, p), _at_pressure(self._dew, T_dew, p), self._data.two_phase)
 
     def _vapour_or_wet(self, p: float, name: str, value: float, wet: str | None) -> State:
         """At `p` below the end of the dew line: vapour where `value` lies above the dew line, else wet if allowed."""
@@ -355,7 +359,8 @@ class Refrigerant:
         return _state(self._held(point))
 
     def _above_from_enthalpy(self, p: float, h: float) -> State:
-        """At supercritical pressure: temperature in a bracket by the false-position rule, then Newton to the last digit."""
+        """At supercritical pressure: temperature in a bracket by the false-position rule, then Newton to the last
+        digit."""
         self._need_supercritical(p)
         low, high = self.T_low, self.T_max
         T = self.T_critical
@@ -378,6 +383,12 @@ class Refrigerant:
             )
         self._need_below_highest_pressure(p)
 
+    def _agrees(self) -> bool:
+        """Whether the lines belong to the equation of state at hand: another edition of it would move a dew point."""
+        dew = self.dew(0.8 * self.T_critical)
+        point = self._equation.at(dew.rho, dew.T)
+        return abs(point.p / dew.p - 1) < 1e-6 and abs(point.h - dew.h) < 1.0 and abs(point.s - dew.s) < 0.01
+
     def _held(self, point: Point) -> Point:
         """The point, if its temperature is inside the range of the equation."""
         self._need_gas_temperature(point.T)
@@ -387,6 +398,11 @@ class Refrigerant:
 def _log_share(p_next: float, p: float) -> float:
     """Turns a straight step in pressure into one in its logarithm, which an isentrope follows more closely."""
     return math.log(p_next / p) * p / (p_next - p)
+
+
+def _at_pressure(line: Line, T: float, p: float) -> SaturationState:
+    _, h, s, ln_rho = line.row(T)
+    return SaturationState(T, p, h, s, math.exp(ln_rho))
 
 
 def _state(point: Point) -> State:
@@ -408,11 +424,14 @@ def refrigerant(name: str) -> Refrigerant:
 
 
 def _make(known: str) -> Refrigerant:
+    """From the shipped data, or from data made anew where they do not belong to the equations of state at hand."""
     from commission.properties import lines
     from commission.properties.generate_lines import build
     from commission.properties.models import model_of
 
     data = lines.read(known)
-    if data is None:
-        data = build(known, *model_of(known))
-    return Refrigerant(data)
+    if data is not None:
+        made = Refrigerant(data)
+        if made._agrees():
+            return made
+    return Refrigerant(build(known, *model_of(known)))

@@ -52,8 +52,8 @@ GWP_BASES = ("ar4", "ar5", "ar6", "eu517", "eu573")
 class Figure:
     """One figure of the register.
 
-    `value` is in the SI unit of `kind` (K, Pa, kg/m3, 1), a text where `kind` is None, or None where the sources disagree
-    so that one must be stated. `mark` is a key of `MARKS`; `written` is the figure as printed.
+    `value` is in the SI unit of `kind` (K, Pa, kg/m3, 1), a text where `kind` is None, or None where the sources
+    disagree so that one must be stated. `mark` is a key of `MARKS`; `written` is the figure as printed.
     """
 
     value: float | str | bool | None
@@ -73,8 +73,9 @@ class Figure:
 class RegisterEntry:
     """One refrigerant of the register; a figure that is None is not known.
 
-    `composition` gives mass fractions. `lfl` is by ISO 817 / EN 378-1, `lfl_ashrae34` by ASHRAE 34. `gwp` is by basis: `ar4`,
-    `ar5`, `ar6` (IPCC reports), `eu517` (repealed method, printed on labels), `eu573` (in force in the EU).
+    `composition` gives mass fractions. `lfl` is by ISO 817 / EN 378-1, `lfl_ashrae34` by ASHRAE 34. `gwp` is by
+    basis: `ar4`, `ar5`, `ar6` (IPCC reports), `eu517` (repealed method, printed on labels), `eu573` (in force in the
+    EU).
     """
 
     name: str

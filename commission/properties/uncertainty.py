@@ -1,12 +1,13 @@
 """How sure a saturation pressure is: from the distance of the property source to published boiling points.
 
-The temperature uncertainty at the normal boiling point has two parts. The distance between the source and the published
-figure, the larger of bubble and dew, is taken as the half-width of an even (rectangular) spread, since nobody knows which
-of the two is nearer the truth: u = d / sqrt(3) (GUM 4.3.7). The published figure is itself recalled or rounded: an even
-spread of 0.03 K for pure fluids (the largest distance of a well-measured one), 0.2 K for blends and 0.4 K where it is
-marked as not sure (figures of different documents differ by so much: common practice, no source). Both are combined as
-a root sum of squares and become a relative pressure by d ln p / dT of the dew line there (Clausius and Clapeyron); in
-relative terms the pressure error of a mixture model changes slowly with temperature, so it is used at any temperature.
+The temperature uncertainty at the normal boiling point has two parts. The distance between the source and the
+published figure, the larger of bubble and dew, is taken as the half-width of an even (rectangular) spread, since
+nobody knows which of the two is nearer the truth: u = d / sqrt(3) (GUM 4.3.7). The published figure is itself
+recalled or rounded: an even spread of 0.03 K for pure fluids (the largest distance of a well-measured one), 0.2 K for
+blends and 0.4 K where it is marked as not sure (figures of different documents differ by so much: common practice, no
+source). Both are combined as a root sum of squares and become a relative pressure by d ln p / dT of the dew line
+there (Clausius and Clapeyron); in relative terms the pressure error of a mixture model changes slowly with
+temperature, so it is used at any temperature.
 """
 
 from __future__ import annotations
