@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
 from commission.quantities import Explained, Input, Kind
@@ -85,15 +85,14 @@ def _judge(
         severity, words, entry = "warning", "low", bottom
     else:
         return
-    figures: list[Figure] = [explained_or_plain(facts, NAMES[key], value, explained, n) for n, value in enumerate(ends)]
-    if ends[0] == ends[1]:
-        figures = figures[:1]
+    figures = _end_figures(facts, NAMES[key], ends, explained)
     label = "believable up to" if words == "high" else "believable from"
     figures.append(facts.plant.threshold_figure(entry.key, label))
     if name == "stated":
         what = f"The {NAMES[key]} of {facts.title} that is written"
     else:
-        what = f"{name} of {facts.title} implies a {NAMES[key]} that"
+        article = "an" if NAMES[key][0] in "aeiou" else "a"
+        what = f"{name} of {facts.title} implies {article} {NAMES[key]} that"
     yield Remark(
         "error" if severity == "error" else "warning",
         path,
@@ -105,15 +104,15 @@ def _judge(
     )
 
 
-def explained_or_plain(
-    facts: SystemFacts, label: str, value: float, explained: tuple[Explained, ...], number: int
-) -> Figure:
-    """A share, with its explanation where it was calculated here; first the least it can be, then the most."""
-    figure = facts.plant.figure(label, value, Kind.RATIO)
-    if not explained:
-        return figure
-    end = "at least" if number == 0 else "at most"
-    return Figure(f"{label}, {end}", figure.text, value, Kind.RATIO, explained[number])
+def _end_figures(
+    facts: SystemFacts, label: str, ends: tuple[float, float], explained: tuple[Explained, ...]
+) -> list[Figure]:
+    """One figure where both ends are the same, else the least and the most, with the explanation where there is one."""
+    words = (label,) if ends[0] == ends[1] else (f"{label}, at least", f"{label}, at most")
+    return [
+        replace(facts.plant.figure(text, value, Kind.RATIO), explained=explained[number] if explained else None)
+        for number, (text, value) in enumerate(zip(words, ends, strict=False))
+    ]
 
 
 def duties(facts: SystemFacts) -> Iterator[Duty]:
@@ -194,9 +193,7 @@ def _states(facts: SystemFacts, duty: Duty, condensing: float) -> tuple[float, f
     if fluid is None:
         raise NotCalculatedError(facts.reason or "the refrigerant is not known")
     evaporating, high = fluid.dew(duty.evaporating), fluid.dew(condensing).p
-    suction = evaporating
-    if duty.suction_superheat:
-        suction = fluid.vapour(duty.evaporating + duty.suction_superheat, evaporating.p)
+    suction = fluid.vapour(duty.evaporating + duty.suction_superheat, evaporating.p)
     liquid = fluid.bubble(fluid.bubble_temperature(high) - duty.subcooling)
     flow = duty.capacity / (suction.h - liquid.h)
     return flow, 1 / suction.rho, suction.h, fluid.isentropic_end(suction, high).h

@@ -75,7 +75,7 @@ def medium_balance(facts: SystemFacts) -> Iterator[Remark]:
             inlet = getattr(point, f"heat_{side}_inlet_temperature")
             outlet = getattr(point, f"heat_{side}_outlet_temperature")
             flow = getattr(point, f"heat_{side}_flow") or medium.flow
-            if medium.medium == "air" or None in (stated, inlet, outlet, flow):
+            if medium.medium == "air" or flow is None or None in (stated, inlet, outlet):
                 continue
             from commission.properties import liquid
 

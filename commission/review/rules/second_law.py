@@ -28,7 +28,10 @@ def beats_carnot(facts: SystemFacts) -> Iterator[Remark]:
 
 
 def too_good(facts: SystemFacts) -> Iterator[Remark]:
-    """A stated COP above the share of Carnot that real machines reach (threshold `second_law_share`)."""
+    """A stated COP above the share of Carnot that real machines reach.
+
+    Source: second law for the limit, threshold `second_law_share` for the share.
+    """
     entry = facts.plant.threshold("second_law_share")
     for stated in stated_cops(facts):
         share = stated.cop / stated.limit.value
