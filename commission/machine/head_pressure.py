@@ -42,13 +42,15 @@ def heat_per_kelvin(by: By | None, share: float, condenser: Exchanger, sink: Str
 
 
 def share_for(by: By, wanted: float, condenser: Exchanger, sink: Stream, least: float) -> float | None:
-    """Share at which the condenser gives `wanted` W/K; below 1 and above `least`, or None where full is too little.
+    """Share at which the condenser gives `wanted` W/K; below 1 and above `least`, or None where full is too little
+    by more than the tolerance of the balance (1e-6).
 
     Returns `least` where even the least share gives more than is wanted. The heat rises with the share, so that a
     bisection in the logarithm of the share always ends.
     """
-    if heat_per_kelvin(by, 1.0, condenser, sink) < wanted:
-        return None
+    greatest = heat_per_kelvin(by, 1.0, condenser, sink)
+    if greatest <= wanted:
+        return 1.0 if wanted < greatest * (1 + 1e-6) else None
     if heat_per_kelvin(by, least, condenser, sink) >= wanted:
         return least
     low, high = math.log(least), 0.0

@@ -265,7 +265,7 @@ def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: fl
     rating = part.rating
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
-    capacity = rating.capacity * (1.0 + a["exchanger_rating_departure"])
+    capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
     return _rating("evaporator", capacity, rating.temperature_difference, medium)
 
 
@@ -279,7 +279,7 @@ def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float
     rating = part.rating
     air_on = rating.air_on if rating.air_on is not None else 25.0 + KELVIN
     medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
-    capacity = rating.capacity * (1.0 + a["exchanger_rating_departure"])
+    capacity = rating.capacity * (1.0 + a["condenser_rating_departure"])
     return _rating("condenser", capacity, rating.temperature_difference, medium)
 
 
