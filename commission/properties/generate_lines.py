@@ -22,7 +22,7 @@ from commission.properties.coolprop import load, version
 from commission.properties.isofugacity import Array, Equilibrium, Phases
 
 TERMS = 33
-PRESSURE_NODES, FRACTION_NODES, FLASH_NODES = 14, 10, 12
+PRESSURE_NODES, FRACTION_NODES, FLASH_NODES = 14, 12, 16
 ATMOSPHERE = 101325.0
 EASY_REDUCED = 0.7
 MINOR_FRACTION = 0.1  # mole

@@ -12,7 +12,8 @@ from functools import cache, cached_property
 from typing import TYPE_CHECKING
 
 from commission.properties.errors import PropertyRangeError, bar, celsius
-from commission.properties.states import SaturationSlopes, SaturationState, Slopes, State
+from commission.properties.saturation import EDGE, Saturation
+from commission.properties.states import SaturationState, Slopes, State
 
 if TYPE_CHECKING:
     from commission.properties.equation import Equation, Point
@@ -20,11 +21,8 @@ if TYPE_CHECKING:
     from commission.properties.register import RegisterEntry
     from commission.properties.two_phase import WetIsobar
 
-NEAR_CRITICAL = 0.97  # of the critical temperature: above, small errors of a model become large ones of its pressures
-EDGE = 1e-8  # relative; a state this close to a line counts as on it, since lines are exact to about this
 
-
-class Refrigerant:
+class Refrigerant(Saturation):
     """One refrigerant of the register. Make it with `refrigerant(name)`.
 
     Temperatures in K, pressures in Pa absolute, J/kg, kg/m3. Enthalpy 200 kJ/kg and entropy 1 kJ/(kg K) in the liquid
@@ -39,25 +37,9 @@ class Refrigerant:
     def __init__(self, data: FluidData) -> None:
         from commission.properties.equation import Equation
 
-        self._data = data
-        self._equation: Equation = Equation(data)
-        self.name = data.refrigerant
-        self.molar_mass = data.molar_mass
-        self.T_critical = data.T_critical
-        self.p_critical = data.p_critical
-        self.T_triple = data.T_triple
-        self.T_max = data.T_max
-        self.T_low = data.T_low
-        self.T_high = data.T_high
-        self.is_blend = len(data.fluids) > 1
+        super().__init__(data)
         self.property_source = data.property_source
-        self._dew: Line = data.dew
-        self._bubble: Line = data.bubble
-        self.p_dew_low, self.p_dew_high = (math.exp(v) for v in data.dew.ln_p_range)
-        self.p_bubble_low, self.p_bubble_high = (math.exp(v) for v in data.bubble.ln_p_range)
-
-    def __repr__(self) -> str:
-        return f"Refrigerant({self.name!r})"
+        self._equation: Equation = Equation(data)
 
     @property
     def calls(self) -> int:
@@ -78,81 +60,6 @@ class Refrigerant:
 
         return pressure_relative_uncertainty(self, self.register)
 
-    # Saturation
-
-    def dew(self, T: float) -> SaturationState:
-        """The dew point (saturated vapour) at `T` (K).
-
-        Raises:
-            PropertyRangeError: `T` outside `T_low`..`T_high`.
-        """
-        return self._saturation(self._dew, T)
-
-    def bubble(self, T: float) -> SaturationState:
-        """The bubble point (saturated liquid) at `T` (K).
-
-        Raises:
-            PropertyRangeError: `T` outside `T_low`..`T_high`.
-        """
-        return self._saturation(self._bubble, T)
-
-    def dew_temperature(self, p: float) -> float:
-        """Temperature (K) of the dew line at `p` (Pa absolute).
-
-        Raises:
-            PropertyRangeError: `p` outside the line.
-        """
-        self._need_pressure(p, self.p_dew_low, self.p_dew_high)
-        return self._dew.temperature(p)
-
-    def bubble_temperature(self, p: float) -> float:
-        """Temperature (K) of the bubble line at `p` (Pa absolute).
-
-        Raises:
-            PropertyRangeError: `p` outside the line.
-        """
-        self._need_pressure(p, self.p_bubble_low, self.p_bubble_high)
-        return (self._bubble if self.is_blend else self._dew).temperature(p)
-
-    def dew_slopes(self, T: float) -> SaturationSlopes:
-        """Derivatives along the dew line at `T` (K). Raises PropertyRangeError outside the line."""
-        self._need_temperature(T)
-        return SaturationSlopes(*self._dew.slopes(T))
-
-    def bubble_slopes(self, T: float) -> SaturationSlopes:
-        """Derivatives along the bubble line at `T` (K). Raises PropertyRangeError outside the line."""
-        self._need_temperature(T)
-        return SaturationSlopes(*self._bubble.slopes(T))
-
-    def _saturation(self, line: Line, T: float) -> SaturationState:
-        self._need_temperature(T)
-        ln_p, h, s, ln_rho = line.row(T)
-        if NEAR_CRITICAL * self.T_critical < T:
-            return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho), (self._near_critical(T),))
-        return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho))
-
-    def _near_critical(self, T: float) -> str:
-        return (
-            f"{self.name} at {celsius(T)} is within 3 % of its critical temperature ({celsius(self.T_critical)}): "
-            "pressures and enthalpies of the property source are less sure there"
-        )
-
-    def _need_temperature(self, T: float) -> None:
-        if not self.T_low * (1 - EDGE) <= T <= self.T_high * (1 + EDGE):
-            raise PropertyRangeError(
-                self.name,
-                f"no saturation at {celsius(T)}; it is known from {celsius(self.T_low)} to {celsius(self.T_high)} "
-                f"(critical temperature {celsius(self.T_critical)})",
-            )
-
-    def _need_pressure(self, p: float, low: float, high: float) -> None:
-        if not low * (1 - EDGE) <= p <= high * (1 + EDGE):
-            raise PropertyRangeError(
-                self.name,
-                f"no saturation at {bar(p)}; it is known from {bar(low)} to {bar(high)} "
-                f"(critical pressure {bar(self.p_critical)})",
-            )
-
     # Single phase
 
     def vapour(self, T: float, p: float) -> State:
@@ -160,8 +67,7 @@ class Refrigerant:
 
         Raises:
             PropertyRangeError: below the dew line, colder than `T_low`, hotter than `T_max`, or a blend above the end
-            of
-                its dew line.
+                of its dew line.
         """
         self._need_gas_temperature(T)
         if p > self.p_dew_high:
@@ -307,7 +213,9 @@ class Refrigerant:
         self._need_pressure(p, self.p_bubble_low, self.p_dew_high)
         T_dew = self._dew.temperature(p)
         T_bubble = self._bubble.temperature(p) if self.is_blend else T_dew
-        return WetIsobar(_at_pressure(self._bubble, T_bubble, p), _at_pressure(self._dew, T_dew, p), self._data.two_phase)
+        return WetIsobar(
+            _at_pressure(self._bubble, T_bubble, p), _at_pressure(self._dew, T_dew, p), self._data.two_phase
+        )
 
     def _vapour_or_wet(self, p: float, name: str, value: float, wet: str | None) -> State:
         """At `p` below the end of the dew line: vapour where `value` lies above the dew line, else wet if allowed."""
@@ -359,22 +267,15 @@ class Refrigerant:
         return _state(self._held(point))
 
     def _above_from_enthalpy(self, p: float, h: float) -> State:
-        """At supercritical pressure: temperature in a bracket by the false-position rule, then Newton to the last
-        digit."""
+        """At supercritical pressure, where temperature and enthalpy rise together, so that there is one state.
+
+        Newton in density and temperature, in which the equation is smooth through the critical region, so that one start
+        in its middle does for all.
+        """
         self._need_supercritical(p)
-        low, high = self.T_low, self.T_max
-        T = self.T_critical
-        for _ in range(60):
-            point = self._above(T, p)
-            miss = h - point.h
-            low, high = (T, high) if miss > 0 else (low, T)
-            step = miss / point.cp
-            if abs(step) < 1e-7 * T:
-                return _state(self._held(self._equation.solve(p, "h", h, point.rho, point.T)))
-            T = T + step if low < T + step < high else (low + high) / 2
-            if high - low < 1e-9:
-                break
-        raise PropertyRangeError(self.name, f"no state with {h / 1e3:.1f} kJ/kg at {bar(p)} inside the range")
+        ends = self._dew.row(self.T_high), self._bubble.row(self.T_high)
+        middle = 0.5 * sum(math.exp(end[3]) for end in ends)
+        return _state(self._held(self._equation.solve(p, "h", h, middle, 1.02 * self.T_critical)))
 
     def _need_supercritical(self, p: float) -> None:
         if self.is_blend or not p >= self.p_critical:
