@@ -1,0 +1,111 @@
+"""A description written out as a person would write it: short parts on one line, text quoted only where it must be."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterator, Mapping
+from typing import Any
+
+from commission.description.positions import DescriptionError
+from commission.description.reading import read_yaml
+from commission.description.starting import HINT
+
+_WIDTH = 110
+_NEVER_PLAIN = set("{}[],#:\"'\\")
+_NOT_FIRST = ("", *"-?=&*!|>%@`")
+_ORDER = (
+    "name", "duty", "serves", "refrigerant", "charge", "installed_on", "spaces", "nameplate", "heat_source",
+    "heat_sink",    "evaporator", "condenser", "controls", "rated_points",
+)  # fmt: skip
+_TO_ADD = """\
+    # Add what is known; each fact replaces an assumption that the manual would show instead:
+    #charge: 0.9 kg
+    #nameplate: {allowable_pressure_low: 17 bar g, allowable_pressure_high: 28 bar g}
+    #compressor: {type: scroll, drive: fixed speed}
+    #expansion: {device: thermostatic valve, superheat: 6 K}
+    #controls: {high_pressure_limit: 22 bar g}
+"""
+
+
+def description_text(
+    data: Mapping[str, Any], schedule: str, lines: Mapping[str, int], notes: Mapping[str, list[str]]
+) -> str:
+    """The text of `plant.yaml`.
+
+    `lines` says in which line of the schedule each system stands; `notes` are the cells of columns that a description
+    has no key for, kept as comments.
+    """
+    origin = f"# Made from {_comment(schedule)}, one system for each row."
+    head = f"{HINT}#\n{origin} Look through it, then add what is known.\n"
+    parts = [head, "plant:\n", *_block(data["plant"], 2)]
+    parts.append(
+        "  #altitude: 310 m                       # sets the barometric pressure, and with it every gauge pressure\n"
+    )
+    if "spaces" in data:
+        parts += ["\nspaces:\n", *_block(data["spaces"], 2)]
+        parts.append("  # for each: add floor_area, height, occupancy, or outdoors: yes\n")
+    parts.append("\nsystems:\n")
+    for identity, system in data["systems"].items():
+        parts.append(
+            f"  {scalar(identity)}:{' ' * max(1, 37 - len(identity))}# line {lines[identity]} of the schedule\n"
+        )
+        ordered = {key: system[key] for key in sorted(system, key=_place)}
+        parts += [*_block(ordered, 4), *(f"    # {_comment(note)}\n" for note in notes.get(identity, ()))]
+        parts += [*_lines_to_add(system), "\n"]
+    return "".join(parts).rstrip("\n") + "\n"
+
+
+def _lines_to_add(system: Mapping[str, Any]) -> Iterator[str]:
+    """The lines of `_TO_ADD` whose keys the system does not have yet."""
+    for line in _TO_ADD.splitlines(keepends=True):
+        key = line.strip().lstrip("#").partition(":")[0]
+        if key not in system:
+            yield line
+
+
+def _place(key: str) -> int:
+    return _ORDER.index(key) if key in _ORDER else len(_ORDER)
+
+
+def _block(data: Mapping[str, Any], indent: int) -> Iterator[str]:
+    """The lines of a mapping: each value on its line where it fits, else below its key."""
+    space = " " * indent
+    for key, value in data.items():
+        line = f"{space}{scalar(key)}: {_flow(value)}\n"
+        if isinstance(value, str) or (isinstance(value, Mapping) and len(line) <= _WIDTH):
+            yield line
+        elif isinstance(value, Mapping):
+            yield f"{space}{scalar(key)}:\n"
+            yield from _block(value, indent + 2)
+        else:
+            yield f"{space}{scalar(key)}:\n"
+            for one in value:
+                first, *rest = _block(one, indent + 4)
+                yield f"{space}  - {first.lstrip()}"
+                yield from rest
+
+
+def _flow(value: Any) -> str:
+    if isinstance(value, Mapping):
+        return "{" + ", ".join(f"{scalar(k)}: {_flow(v)}" for k, v in value.items()) + "}"
+    if isinstance(value, list):
+        return "[" + ", ".join(_flow(one) for one in value) + "]"
+    return scalar(value)
+
+
+def scalar(text: str) -> str:
+    """`text` as a YAML scalar that reads back as itself inside any list or mapping: plain where it can, else quoted."""
+    number = text[:1] == "-" and text[1:2].isdigit()
+    safe_start = text[:1] not in _NOT_FIRST or number
+    if text == text.strip() and text.isprintable() and safe_start and not set(text) & _NEVER_PLAIN:
+        return text
+    quoted = json.dumps(text, ensure_ascii=False)
+    try:
+        same = read_yaml(f"a: {quoted}").data == {"a": text}
+    except DescriptionError:
+        same = False
+    return quoted if same else json.dumps(text)
+
+
+def _comment(text: str) -> str:
+    return "".join(c if c.isprintable() else " " for c in text)
