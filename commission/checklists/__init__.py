@@ -1,0 +1,7 @@
+"""Checklists: what to do on site and in which order, as data; values are filled in from the plant and its predictions."""
+
+from commission.checklists.library import ChecklistError
+from commission.checklists.rendering import Target
+from commission.checklists.stages import Item, Stage, stages
+
+__all__ = ["ChecklistError", "Item", "Stage", "Target", "stages"]

@@ -1,0 +1,164 @@
+"""Values in words: texts with their expressions filled in, and what a reading must be, with unit and band."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.checklists.evaluate import evaluate, parse_literal
+from commission.checklists.language import Expression, Value
+from commission.quantities import NOMENCLATURE, Display, Explained, Kind, parse
+
+if TYPE_CHECKING:
+    from commission.checklists.library import CheckedItem, Template
+    from commission.checklists.words import Facts
+
+VACUUM = 5000.0
+"""Below this, in Pa absolute, a pressure is a vacuum and shown so: a gauge pressure would say nothing."""
+MICRON = 0.133322387415
+COVERAGE = 2.0
+"""Coverage factor of the band of an expected value, about 95 %."""
+
+
+@dataclass(frozen=True, slots=True)
+class Target:
+    """What a reading must be.
+
+    `text` is ready to show. `value`, `low` and `high` are in SI (pressures absolute), None where there is none; `kind`
+    is their kind. `missing` says why a value is not calculated. `explained` are the numbers it rests on.
+    """
+
+    text: str
+    value: float | None = None
+    low: float | None = None
+    high: float | None = None
+    kind: Kind | None = None
+    missing: str | None = None
+    explained: tuple[Explained, ...] = ()
+
+
+def show(value: float, kind: Kind, display: Display) -> str:
+    """A value as a person reads it: vacuum in Pa and micron, long times in hours or days, small differences in bar."""
+    if kind is Kind.PRESSURE and value < VACUUM:
+        return f"{value:.0f} Pa absolute ({round(value / MICRON, -1):.0f} micron)"
+    if kind is Kind.PRESSURE_DIFFERENCE:
+        return f"{display.spread(value, Kind.PRESSURE, 2)} {display.spread_unit(Kind.PRESSURE)}"
+    if kind is Kind.DURATION and value >= 2 * 86400:
+        return f"{value / 86400:.0f} days"
+    if kind is Kind.DURATION and value >= 2 * 3600:
+        return f"{value / 3600:.0f} h"
+    if kind is Kind.DURATION and value < 120:
+        return f"{value:.0f} s"
+    if kind is Kind.NUMBER:
+        return f"{value:g}"
+    return display.text(value, kind)
+
+
+def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
+    """The text with its values, and the calculated numbers in it; what is not known says so and leaves room."""
+    parts: list[str] = []
+    explained: list[Explained] = []
+    for part in template.parts:
+        if isinstance(part, str):
+            parts.append(part)
+            continue
+        value = evaluate(part, facts.lookup, facts.loaded.barometric_pressure)
+        explained += value.explained
+        parts.append(_word(value, facts.display))
+    return "".join(parts), tuple(explained)
+
+
+def _word(value: Value, display: Display) -> str:
+    if not value.known:
+        return f"______ ({value.missing})"
+    if isinstance(value.content, bool):
+        return "yes" if value.content else "no"
+    if isinstance(value.content, float) and isinstance(value.type, Kind):
+        return show(value.content, value.type, display)
+    return str(value.content)
+
+
+def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
+    """What the item's reading must be; None where the item asks for none."""
+    if item.entry.must_read is None:
+        return None
+    kind = _kind(item)
+    if kind is None:
+        return Target(says or "")
+    worked = {key: _work(bound, kind, facts) for key, bound in item.must_read.items() if key != "within"}
+    explained = tuple(e for value in worked.values() for e in value.explained)
+    missing = next((v.missing for v in worked.values() if not v.known), None)
+    if missing is not None:
+        text = f"not calculated: {missing}"
+        return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
+    within = item.must_read.get("within")
+    numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}
+    value, low, high = _range(numbers, within if isinstance(within, str) else None, kind, explained)
+    text = _range_text(value, low, high, kind, facts.display)
+    if within == "band" and low is not None and "expected." in _text_of(item):
+        condition = facts.lookup("words.condition")
+        text += f", expected at {condition.content} (95 % band of the calculation; the instrument's own comes on top)"
+    return Target(f"{text}; {says}" if says else text, value, low, high, kind, None, explained)
+
+
+def _text_of(item: CheckedItem) -> str:
+    bound = item.must_read.get("value")
+    return bound.text if isinstance(bound, Expression) else ""
+
+
+def _kind(item: CheckedItem) -> Kind | None:
+    """The kind of the reading: of its quantity, of an expression, or of the unit that is written."""
+    if item.entry.quantity is not None:
+        return NOMENCLATURE[item.entry.quantity].kind
+    for bound in item.must_read.values():
+        if isinstance(bound, Expression) and isinstance(bound.type, Kind):
+            return bound.type
+    if item.entry.unit is not None and any(key in item.must_read for key in ("value", "at_least", "at_most")):
+        from commission.checklists.library import kind_of_unit
+
+        return kind_of_unit(item.entry.unit)
+    return None
+
+
+def _work(bound: Expression | str, kind: Kind, facts: Facts) -> Value:
+    if isinstance(bound, Expression):
+        return evaluate(bound, facts.lookup, facts.loaded.barometric_pressure)
+    return Value(kind, parse_literal(bound, kind, facts.loaded.barometric_pressure))
+
+
+def _range(
+    numbers: dict[str, float], within: str | None, kind: Kind, explained: tuple[Explained, ...]
+) -> tuple[float | None, float | None, float | None]:
+    """Value, lower and upper bound in SI."""
+    value, low, high = numbers.get("value"), numbers.get("at_least"), numbers.get("at_most")
+    if value is None or within is None:
+        return value, low, high
+    if within == "band":
+        spread = next((e.uncertainty for e in explained if e.value == value and e.uncertainty is not None), None)
+        if spread is None:
+            return value, low, high
+        margin = COVERAGE * spread
+    elif within.strip().endswith("%") and kind is not Kind.RATIO:
+        margin = abs(value) * parse(within, Kind.RATIO)
+    else:
+        margin = parse(within, _margin_kind(kind))
+    return value, value - margin, value + margin
+
+
+def _margin_kind(kind: Kind) -> Kind:
+    return {Kind.TEMPERATURE: Kind.TEMPERATURE_DIFFERENCE, Kind.PRESSURE: Kind.PRESSURE_DIFFERENCE}.get(kind, kind)
+
+
+def _range_text(value: float | None, low: float | None, high: float | None, kind: Kind, display: Display) -> str:
+    def shown(x: float) -> str:
+        return show(x, kind, display)
+
+    if value is not None and low is not None and high is not None:
+        return f"{shown(value)}, within {shown(low)} to {shown(high)}"
+    if value is not None:
+        return shown(value)
+    if low is not None and high is not None:
+        return f"{shown(low)} to {shown(high)}"
+    if low is not None:
+        return f"at least {shown(low)}"
+    return f"at most {shown(high)}" if high is not None else ""

@@ -1,0 +1,178 @@
+"""The checklist of one system: stages in safe order, each item with its values filled in."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.checklists.entries import Answer
+from commission.checklists.evaluate import evaluate
+from commission.checklists.library import CheckedItem, CheckedStage, kind_of_unit, plant_library
+from commission.checklists.rendering import Target, fill, target
+from commission.checklists.words import Facts, predictions
+from commission.quantities import Display, Explained, Kind
+from commission.safety import MARKS, safety_figures, substance_of
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
+
+
+@dataclass(frozen=True, slots=True)
+class Item:
+    """One act or observation, ready to be shown.
+
+    `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown), yes/no, a
+    file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated numbers in its
+    texts. `note` says why an item is shown although a fact it depends on is not known. `left_out` holds the reason
+    where the plant's own list leaves the item out. `origin` is the data file and line.
+    """
+
+    id: str
+    do: str
+    source: str
+    mark: str
+    answer: Answer
+    how: str | None = None
+    must_read: Target | None = None
+    if_not: str | None = None
+    hazard: str | None = None
+    caution: str | None = None
+    who: str | None = None
+    quantity: str | None = None
+    unit: str | None = None
+    figures: tuple[Explained, ...] = ()
+    note: str | None = None
+    left_out: str | None = None
+    origin: str = ""
+
+    @property
+    def sureness(self) -> str:
+        """What the mark of the source means, in words."""
+        return MARKS[self.mark]
+
+
+@dataclass(frozen=True, slots=True)
+class Stage:
+    """One stage of the work; its place in the list is part of what makes the work safe."""
+
+    id: str
+    title: str
+    purpose: str
+    items: tuple[Item, ...]
+
+
+def stages(
+    loaded: LoadedPlant,
+    system_id: str,
+    model: SystemModel | None = None,
+    conditions: Mapping[str, float] | None = None,
+    library: Sequence[CheckedStage] | None = None,
+) -> tuple[Stage, ...]:
+    """The checklist of one system; a stage in which nothing applies is left out.
+
+    `model` is the fitted model; without it expected readings say that they are not calculated. `conditions` (SI, keys
+    of the nomenclature) is the condition of the expected readings, None the rated one. `library` replaces the shipped
+    library and the plant's own files.
+
+    Raises:
+        InputError: no such system or refrigerant.
+        ChecklistError: the plant's own checklists cannot be used.
+    """
+    facts = facts_of(loaded, system_id, model, conditions)
+    checked = plant_library(loaded.folder) if library is None else library
+    placed: dict[str, list[tuple[CheckedItem, str | None]]] = {stage.id: [] for stage in checked}
+    moved: list[tuple[CheckedItem, str | None]] = []
+    for stage in checked:
+        for item in stage.items:
+            applies, note = _applies(item, facts)
+            if not applies:
+                continue
+            if _moves(item, facts):
+                moved.append((item, note))
+            else:
+                placed[stage.id].append((item, note))
+    for item, note in moved:
+        _insert(placed, item, note)
+    return tuple(
+        Stage(stage.id, stage.title, fill(stage.purpose, facts)[0], tuple(render(i, n, facts) for i, n in placed[stage.id]))
+        for stage in checked
+        if placed[stage.id]
+    )
+
+
+def facts_of(
+    loaded: LoadedPlant, system_id: str, model: SystemModel | None, conditions: Mapping[str, float] | None
+) -> Facts:  # fmt: skip
+    """Everything the checklist of one system is worked out from."""
+    from commission.properties import refrigerant
+
+    substance = substance_of(refrigerant(loaded.system(system_id).refrigerant))
+    found, missing = predictions(model, loaded, system_id, conditions)
+    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    return Facts(loaded, system_id, substance, safety_figures(loaded, system_id, model), found, missing, display)
+
+
+def _applies(item: CheckedItem, facts: Facts) -> tuple[bool, str | None]:
+    """Whether an item applies. Not known counts as yes, with a note: a question too many hurts nobody."""
+    if item.when is None:
+        return True, None
+    found = evaluate(item.when, facts.lookup, facts.loaded.barometric_pressure)
+    if found.known:
+        return bool(found.content), None
+    return True, f"shown because a fact is not known ({found.missing})"
+
+
+def _moves(item: CheckedItem, facts: Facts) -> bool:
+    if item.move_when is None:
+        return False
+    return evaluate(item.move_when, facts.lookup, facts.loaded.barometric_pressure).content is True
+
+
+def _insert(placed: dict[str, list[tuple[CheckedItem, str | None]]], item: CheckedItem, note: str | None) -> None:
+    move = item.entry.move
+    assert move is not None
+    there = placed[move.to]
+    index = next((i for i, (x, _) in enumerate(there) if x.entry.id == move.after), len(there) - 1)
+    there.insert(index + 1, (item, note))
+
+
+def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
+    """An item with its values filled in."""
+    figures: list[Explained] = []
+    texts: dict[str, str] = {}
+    for key, template in item.texts.items():
+        texts[key], used = fill(template, facts)
+        figures += used
+    reading = target(item, texts.get("says"), facts)
+    if reading is not None:
+        figures += reading.explained
+    entry = item.entry
+    mark = entry.mark or ("practice" if entry.source.startswith("common practice") else "M")
+    return Item(
+        id=entry.id, do=texts["do"], source=texts["source"], mark=mark, answer=entry.answer, how=texts.get("how"),
+        must_read=reading, if_not=texts.get("if_not"), hazard=texts.get("hazard"), caution=texts.get("caution"),
+        who=texts.get("who"), quantity=entry.quantity, unit=_unit(item, facts), figures=tuple(dict.fromkeys(figures)),
+        note=note, left_out=item.left_out, origin=item.origin,
+    )  # fmt: skip
+
+
+def _unit(item: CheckedItem, facts: Facts) -> str | None:
+    from commission.quantities import NOMENCLATURE, pretty
+
+    entry = item.entry
+    if entry.answer != "value":
+        return None
+    if entry.unit is not None:
+        return pretty(_unit_as_shown(entry.unit, facts.display))
+    assert entry.quantity is not None
+    return pretty(facts.display.unit_and_digits(NOMENCLATURE[entry.quantity].kind)[0])
+
+
+def _unit_as_shown(unit: str, display: Display) -> str:
+    """The unit of an answer in the plant's own system of units; vacuum and times stay as they are measured."""
+    kind = kind_of_unit(unit)
+    if display.system == "metric" or kind is None or kind in (Kind.DURATION, Kind.NUMBER):
+        return unit
+    return "micron" if unit == "Pa a" else display.unit_and_digits(kind)[0]

@@ -1,0 +1,185 @@
+"""Values of the names in checklist data for one system: description, refrigerant, safety figures, predictions."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
+
+from commission.checklists.language import Value
+from commission.checklists.names import names
+from commission.checklists.phrases import PHRASES
+from commission.errors import NotCalculatedError
+from commission.quantities import Display, Kind, Pressure
+from commission.safety import Figures, LeakDuty, Substance, leak_duty
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.description.model import Space, System
+    from commission.prediction import Prediction, SystemModel
+
+
+@dataclass(frozen=True)
+class Facts:
+    """Everything one system's checklist is worked out from.
+
+    `predictions` are by the word in front of a name: `expected`, `hottest`, `coldest`; one that is missing has its
+    reason in `no_prediction`.
+    """
+
+    loaded: LoadedPlant
+    system_id: str
+    substance: Substance
+    figures: Figures
+    predictions: Mapping[str, Prediction]
+    no_prediction: Mapping[str, str]
+    display: Display
+    cache: dict[str, Value] = field(default_factory=dict)
+
+    @cached_property
+    def system(self) -> System:
+        """The description of the system."""
+        return self.loaded.system(self.system_id)
+
+    @cached_property
+    def duty(self) -> LeakDuty:
+        """The leak-check duty of the system."""
+        law = self.loaded.plant.plant.rules.refrigerant_law
+        return leak_duty(law, self.substance, self.system.charge, self.system.sealed, self.system.duty)
+
+    def space(self, part: str) -> Space | None:
+        """The space that holds a part, or that its air comes from."""
+        place = getattr(self.system.spaces, part)
+        if place is None:
+            place = (self.system.heat_source if part == "evaporator" else self.system.heat_sink).space
+        return self.loaded.plant.spaces.get(place or "")
+
+    def space_name(self, part: str) -> str | None:
+        """The name of that space as it stands on the door."""
+        place = getattr(self.system.spaces, part)
+        if place is None:
+            place = (self.system.heat_source if part == "evaporator" else self.system.heat_sink).space
+        space = self.loaded.plant.spaces.get(place or "")
+        return None if space is None else space.name or place
+
+    def lookup(self, name: str) -> Value:
+        """The value of a dotted name of `names()`."""
+        if name not in self.cache:
+            self.cache[name] = _look_up(self, name)
+        return self.cache[name]
+
+
+def predictions(
+    model: SystemModel | None, loaded: LoadedPlant, system_id: str, conditions: Mapping[str, float] | None
+) -> tuple[dict[str, Prediction], dict[str, str]]:
+    """Predictions at the condition of the list and on the hottest and coldest design days, or why there are none."""
+    found: dict[str, Prediction] = {}
+    missing: dict[str, str] = {}
+    climate = loaded.plant.plant.climate
+    wanted: dict[str, Mapping[str, float] | None | str] = {"expected": conditions}
+    for word, temperature in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
+        wanted[word] = _on_day(model, outdoor_conditions(loaded, system_id), word, temperature)
+    for word, at in wanted.items():
+        if model is None:
+            missing[word] = "this system could not be calculated"
+        elif isinstance(at, str):
+            missing[word] = at
+        else:
+            try:
+                found[word] = model.predict(at)
+            except NotCalculatedError as error:
+                missing[word] = str(error)
+    return found, missing
+
+
+def outdoor_conditions(loaded: LoadedPlant, system_id: str) -> tuple[str, ...]:
+    """The conditions of a system that are the temperature of outdoor air.
+
+    A side without a stated space is outdoors where heat is made from it, or thrown away: the source of a heat pump, the
+    sink of a cooling plant.
+    """
+    system = loaded.system(system_id)
+    heating = system.duty in ("space_heating", "water_heating")
+    found = []
+    for side, medium in (("heat_source", system.heat_source), ("heat_sink", system.heat_sink)):
+        space = loaded.plant.spaces.get(medium.space or "")
+        outdoors = space.outdoors if space is not None else (side == "heat_source") == heating
+        if medium.medium == "air" and outdoors:
+            found.append(f"{side}_inlet_temperature")
+    return tuple(found)
+
+
+def _on_day(
+    model: SystemModel | None, outdoor: tuple[str, ...], word: str, temperature: float | None
+) -> dict[str, float] | str:
+    """The condition of a design day: outdoor air on the side that is outdoors."""
+    if model is None:
+        return "this system could not be calculated"
+    if temperature is None:
+        return f"the {word} outdoor temperature is not stated (plant.climate)"
+    sides = [key for key in outdoor if key in model.condition_axes]
+    if not sides:
+        return "no condition of this system is outdoor air"
+    return dict.fromkeys(sides, temperature)
+
+
+def _look_up(facts: Facts, name: str) -> Value:
+    known = names()[name]
+    head, _, rest = name.partition(".")
+    reader: Callable[[Facts, str], Any] | None = PHRASES.get(name)
+    if reader is not None:
+        content = reader(facts, rest)
+        return _value(known.type, content, f"not known: {known.says}")
+    if head in ("expected", "hottest", "coldest"):
+        return _prediction(facts, head, rest, known.type)
+    if head == "condition":
+        prediction = facts.predictions.get("expected")
+        content = None if prediction is None else prediction.conditions.get(rest)
+        return _value(known.type, content, f"the condition {rest} does not belong to this system")
+    if head == "figure":
+        figure = facts.figures.get(rest)
+        if figure is None:
+            return Value(known.type, None, facts.figures.not_calculated.get(rest, "not calculated"))
+        return Value(known.type, figure.value, None, (figure.explained,))
+    return _described(facts, head, rest, known.type)
+
+
+def _value(kind: Any, content: Any, missing: str) -> Value:
+    return Value(kind, None, missing) if content is None else Value(kind, content)
+
+
+def _prediction(facts: Facts, word: str, key: str, kind: Any) -> Value:
+    prediction = facts.predictions.get(word)
+    if prediction is None:
+        return Value(kind, None, facts.no_prediction[word])
+    explained = prediction.expected.get(key)
+    if explained is not None:
+        return Value(kind, explained.value, None, (explained,))
+    if key in prediction.conditions:
+        return Value(kind, prediction.conditions[key])
+    return Value(kind, None, prediction.not_calculated.get(key, "not calculated for this kind of system"))
+
+
+def _described(facts: Facts, head: str, path: str, kind: Any) -> Value:
+    roots: dict[str, Any] = {
+        "system": facts.system,
+        "plant": facts.loaded.plant.plant,
+        "evaporator_space": facts.space("evaporator"),
+        "condensing_space": facts.space("condensing_unit"),
+    }
+    node = roots[head]
+    where = {"system": f"systems.{facts.system_id}"}.get(head, head)
+    missing = f"not stated: write {where}.{path}"
+    for part in path.split("."):
+        if node is None:
+            return Value(kind, None, missing)
+        # names were made from these same models, so only fields that are declared can be reached
+        node = getattr(node, part if part in type(node).model_fields else f"{part}_")
+    if isinstance(node, Pressure):
+        return Value(kind, facts.loaded.absolute(node))
+    if kind == "part":
+        return Value(kind, True) if node else Value(kind, None, missing)
+    if isinstance(node, int) and not isinstance(node, bool) and isinstance(kind, Kind):
+        node = float(node)
+    return _value(kind, node, missing)

@@ -1,0 +1,48 @@
+"""Safety figures with document, edition and mark: pressures, evacuation, charge, leak checks, hazards, emergency card."""
+
+from commission.safety.card import CardSection, EmergencyCard, emergency_card
+from commission.safety.charge import ADVICE, SpaceCharge, charge_limits
+from commission.safety.facts import MARKS, Fact, fact, facts
+from commission.safety.figure import TITLES as FIGURE_TITLES
+from commission.safety.figure import Figure, Figures
+from commission.safety.figures import safety_figures
+from commission.safety.formulas import nitrogen_pressure
+from commission.safety.leaks import LeakDuty, label_text, leak_duty
+from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, limit_order
+from commission.safety.limits import ChargeLimit
+from commission.safety.people import Hazards, Level, hazards
+from commission.safety.pressures import strength_test_steps
+from commission.safety.register import substance_of
+from commission.safety.substance import Substance
+
+__all__ = [
+    "ADVICE",
+    "FIGURE_TITLES",
+    "MARKS",
+    "CardSection",
+    "ChargeLimit",
+    "EmergencyCard",
+    "Fact",
+    "Figure",
+    "Figures",
+    "Hazards",
+    "LeakDuty",
+    "Level",
+    "LimitOrder",
+    "OutOfOrder",
+    "PressureStep",
+    "SpaceCharge",
+    "Substance",
+    "charge_limits",
+    "emergency_card",
+    "fact",
+    "facts",
+    "hazards",
+    "label_text",
+    "leak_duty",
+    "limit_order",
+    "nitrogen_pressure",
+    "safety_figures",
+    "strength_test_steps",
+    "substance_of",
+]
