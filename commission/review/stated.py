@@ -6,7 +6,7 @@ import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from commission.description.model import CondensingUnitPoint, Conditions, Medium, RatedPoint
+from commission.description.model import CompressorPoint, CondensingUnitPoint, Conditions, Medium, RatedPoint
 from commission.errors import NotCalculatedError
 from commission.quantities import Explained, Input, Kind
 from commission.review.facts import SystemFacts
@@ -44,9 +44,11 @@ def stated_cops(facts: SystemFacts) -> Iterator[StatedCop]:
             cop = cop_of(point, quantity)
             if cop is not None:
                 yield from _between_media(facts, path, name, quantity, cop, point, heat)
-    unit = facts.system.condensing_unit
+    unit, table = facts.system.condensing_unit, facts.system.compressor.table
     for index, row in enumerate(unit.rated_points if unit else ()):
         yield from _of_condensing_unit(facts, index, row)
+    for index, line in enumerate(table.points if table else ()):
+        yield from _of_compressor_table(facts, index, line)
     for index, guarantee in enumerate(facts.system.guarantee):
         if guarantee.quantity in ("cooling_cop", "heating_cop"):
             path = facts.path("guarantee", index)
@@ -133,32 +135,48 @@ def _of_condensing_unit(facts: SystemFacts, index: int, row: CondensingUnitPoint
     """A condensing unit by its refrigerant: mean temperature in the cooler against the air on the condenser."""
     path = facts.path("condensing_unit", "rated_points", index)
     name = f"Row {index + 1} of the condensing unit's table"
-    source = mean_refrigerant_temperature(facts, row)
+    unit = facts.system.condensing_unit
+    assert unit is not None
+    suction = suction_of_rating(row.evaporating_temperature, unit.suction_temperature, unit.suction_superheat)
     sink = row.heat_sink_inlet_temperature
+    source = mean_refrigerant_temperature(facts, row.evaporating_temperature, suction, sink)
     if sink > source:
         cop = row.cooling_capacity / row.power_input
         yield StatedCop(path, name, "cooling_cop", cop, source, sink, carnot("cooling_cop", source, sink, path))
 
 
-def mean_refrigerant_temperature(facts: SystemFacts, row: CondensingUnitPoint) -> float:
-    """(h_1 - h_4) / (s_1 - s_4) in K from valve to suction of a condensing unit's rating.
+def _of_compressor_table(facts: SystemFacts, index: int, point: CompressorPoint) -> Iterator[StatedCop]:
+    """A compressor alone, by its refrigerant: mean temperature in the evaporator against the condensing temperature."""
+    table = facts.system.compressor.table
+    if table is None or point.cooling_capacity is None:
+        return
+    suction = suction_of_rating(point.evaporating_temperature, table.suction_temperature, table.suction_superheat)
+    sink = point.condensing_temperature
+    source = mean_refrigerant_temperature(facts, point.evaporating_temperature, suction, sink)
+    path = facts.path("compressor", "table", "points", index)
+    name = f"Row {index + 1} of the compressor's table"
+    cop = point.cooling_capacity / point.compressor_power
+    if sink > source:
+        yield StatedCop(path, name, "cooling_cop", cop, source, sink, carnot("cooling_cop", source, sink, path))
 
-    The liquid is taken at the temperature of the air on the condenser, the coldest it can be, which makes the bound
-    generous.
+
+def suction_of_rating(evaporating: float, suction: float | None, superheat: float | None) -> float:
+    """Suction temperature of a rating in K: as stated, or by its superheat, or saturated where neither is stated."""
+    return max(evaporating, suction) if suction is not None else evaporating + (superheat or 0.0)
+
+
+def mean_refrigerant_temperature(facts: SystemFacts, evaporating: float, suction: float, liquid_at: float) -> float:
+    """(h_1 - h_4) / (s_1 - s_4) in K from valve to suction; arguments in K.
+
+    The liquid is taken saturated at `liquid_at`, the coldest it can be at the sink of the rating.
 
     Raises:
         NotCalculatedError: the refrigerant is not known or a state lies outside its range.
     """
-    unit = facts.system.condensing_unit
     fluid = facts.refrigerant
-    if unit is None or fluid is None:
+    if fluid is None:
         raise NotCalculatedError(facts.reason or "the refrigerant is not known")
-    evaporating = fluid.dew(row.evaporating_temperature)
-    suction_temperature = unit.suction_temperature or row.evaporating_temperature + (unit.suction_superheat or 0.0)
-    suction = (
-        fluid.vapour(suction_temperature, evaporating.p)
-        if suction_temperature > row.evaporating_temperature
-        else evaporating
-    )
-    inlet = fluid.throttled(evaporating.p, fluid.bubble(row.heat_sink_inlet_temperature).h)
-    return float((suction.h - inlet.h) / (suction.s - inlet.s))
+    pressure = fluid.dew(evaporating).p
+    leaving = fluid.vapour(suction, pressure)
+    inlet = fluid.throttled(pressure, fluid.bubble(liquid_at).h)
+    return float((leaving.h - inlet.h) / (leaving.s - inlet.s))

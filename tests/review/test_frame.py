@@ -205,6 +205,30 @@ def test_record_files_that_are_not_as_filed(facts: Facts) -> None:
     assert [len(f.text) for f in found[0].figures] == [64, 64]
 
 
+def test_records_that_cannot_be_read(facts: Facts, monkeypatch: pytest.MonkeyPatch) -> None:
+    """A damaged file and a broken seal are errors; a record in order is none."""
+    import datetime as dt
+
+    from commission.errors import Problem
+    from commission.records import history
+
+    def record(holds: bool) -> SimpleNamespace:
+        started = dt.datetime(2027, 4, 1, tzinfo=dt.UTC)
+        return SimpleNamespace(path=Path("visit.yaml"), started=started, seal_holds=holds)
+
+    plant = facts().plant
+    monkeypatch.setattr(history, "damaged", lambda _: ())
+    monkeypatch.setattr(history, "history", lambda _: (record(True),))
+    assert not list(files.unreadable_records(plant))
+    monkeypatch.setattr(history, "damaged", lambda _: (Problem("half of it is gone", file="old.yaml"),))
+    monkeypatch.setattr(history, "history", lambda _: (record(False),))
+    found = list(files.unreadable_records(plant))
+    assert [(remark.severity, remark.path) for remark in found] == [
+        ("error", "records/old.yaml"), ("error", "records/visit.yaml"),
+    ]  # fmt: skip
+    assert "half of it is gone" in found[0].title
+
+
 def test_importing_the_room_is_light() -> None:
     """The room loads no property library, figures or solver before it is asked to review."""
     code = (

@@ -6,11 +6,14 @@ import datetime as dt
 import math
 from collections.abc import Callable
 from dataclasses import replace
+from pathlib import Path
+from types import SimpleNamespace
 
 import pytest
 
 from commission.acceptance.instruments import instrument_budget
 from commission.properties import refrigerant
+from commission.records import history
 from commission.review.facts import PlantFacts, SystemFacts
 from commission.review.finding import Figure, Remark
 from commission.review.rules import calibration, instruments
@@ -52,6 +55,24 @@ def test_a_calibration_dated_after_the_visit(facts: Facts) -> None:
     (remark,) = calibration.expired(on(here, "2027-04-01"))
     assert remark.path == "instruments.probe.calibrated_on"
     assert not list(calibration.expired(on(here, "2027-06-01")))
+
+
+def test_a_record_read_with_an_instrument_out_of_calibration(facts: Facts, monkeypatch: pytest.MonkeyPatch) -> None:
+    """What counts is the calibration that was frozen into the record of that day."""
+
+    def record(until: str) -> SimpleNamespace:
+        filed = SimpleNamespace(instruments={"probe": {"calibrated_until": until}, "other": {}})
+        started = dt.datetime(2027, 4, 1, 9, 30, tzinfo=dt.UTC)
+        file = SimpleNamespace(corrects=None)
+        return SimpleNamespace(id="a", path=Path("2027-04-01.yaml"), started=started, filed=filed, file=file)
+
+    plant = facts().plant
+    monkeypatch.setattr(history, "history", lambda _: (record("2027-03-31"),))
+    (remark,) = calibration.expired_on_the_day(plant)
+    assert remark.path == "records/2027-04-01.yaml"
+    assert [f.text for f in remark.figures] == ["2027-03-31", "2027-04-01"]
+    monkeypatch.setattr(history, "history", lambda _: (record("2027-04-01"),))
+    assert not list(calibration.expired_on_the_day(plant))
 
 
 def test_an_instrument_without_serial_number(facts: Facts) -> None:

@@ -10,10 +10,10 @@ from typing import Any
 import pytest
 
 from commission.errors import NotCalculatedError
-from commission.quantities import Explained
+from commission.quantities import Explained, Input, Kind
 from commission.review.facts import SystemFacts
 from commission.review.finding import Figure, Remark
-from commission.review.rules import efficiency, guarantees, rated
+from commission.review.rules import efficiency, guarantees, rated, second_law
 
 Facts = Callable[..., SystemFacts]
 AT = {"heat_source_inlet_temperature": "4 °C", "heat_sink_inlet_temperature": "32 °C"}
@@ -69,6 +69,48 @@ def test_a_condensing_unit_table_is_held_to_the_same_order(facts: Facts) -> None
     (remark,) = rated.easier_lift_lower_cop(facts({"condensing_unit": {"rated_points": rows}}))
     assert remark.path == "systems.one.condensing_unit.rated_points.1"
     assert figure(remark, "Evaporating temperature, row 2 of the condensing unit's table").text == "−20.0 °C"
+
+
+@pytest.mark.parametrize(("speed", "fires"), [("3000 rpm", False), ("6000 rpm", True), ("600 rpm", True)])
+def test_a_rated_speed_outside_the_drive(facts: Facts, speed: str, fires: bool) -> None:
+    """A drive from 900 to 5400 rpm does not run at 6000 or 600."""
+    drive = {"drive": "variable speed", "minimum_speed": "900 rpm", "maximum_speed": "5400 rpm"}
+    here = facts({"compressor": drive, "rated_points": [{**POINT, "compressor_speed": speed}]})
+    found = list(rated.speed_outside_the_drive(here))
+    assert [remark.severity for remark in found] == (["error"] if fires else [])
+    if fires:
+        assert figure(found[0], "speed of the rated point").text == speed
+        assert figure(found[0], "highest speed").text == "5400 rpm"
+
+
+@pytest.mark.parametrize(("share", "fires"), [(0.01, False), (0.08, True), (None, False)])
+def test_points_that_scatter(facts: Facts, share: float | None, fires: bool) -> None:
+    """8 % about the fit is more than one table has; with as many points as unknowns there is no scatter."""
+    fitted = {} if share is None else {"scatter of rated points about the fit": Input("scatter", share, Kind.RATIO, "")}
+    model: Any = SimpleNamespace(fitted=fitted)
+    found = list(rated.scatter(replace(facts(), model=model)))
+    assert [remark.severity for remark in found] == (["warning"] if fires else [])
+    if fires:
+        assert found[0].figures[0].text == "8.0 %"
+
+
+def test_a_compressor_table_is_held_to_carnot_and_to_efficiencies(facts: Facts) -> None:
+    """-10/40 °C allows 263.15 / 50 = 5.26: 5.5 is impossible, 4.5 means over 100 % efficiency, 2.5 is sound."""
+    point = {"evaporating_temperature": "-10 °C", "condensing_temperature": "40 °C", "compressor_power": "1 kW"}
+
+    def judge(capacity: str) -> tuple[list[Remark], list[Remark]]:
+        points = [{**point, "cooling_capacity": capacity}]
+        table = {"points": points, "suction_superheat": "0 K", "liquid_subcooling": "0 K"}
+        here = facts({"compressor": {"table": table}})
+        return list(second_law.beats_carnot(here)), list(efficiency.implied_isentropic(here))
+
+    assert judge("2.5 kW") == ([], [])
+    (impossible,), _ = judge("5.5 kW")
+    assert impossible.path == "systems.one.compressor.table.points.0"
+    assert figure(impossible, "Carnot COP").value == pytest.approx(263.15 / 50, rel=1e-3)
+    carnot, (too_good,) = judge("4.5 kW")
+    assert not carnot
+    assert too_good.severity == "error"
 
 
 @pytest.mark.parametrize(
@@ -190,6 +232,16 @@ def test_a_guarantee_without_the_table_it_is_carried_along(facts: Facts) -> None
     other = {**POINT, "heat_sink_inlet_temperature": "40 °C", "cooling_capacity": "3 kW"}
     assert not list(guarantees.cannot_be_carried(facts({"guarantee": [promise], "rated_points": [POINT, other]})))
     assert not list(guarantees.cannot_be_carried(facts({"guarantee": [PROMISE]})))
+
+
+def test_a_guarantee_on_no_row(facts: Facts) -> None:
+    """A condition that the table lacks is a note with the model's figure; a row of the table is none."""
+    at = {**AT, "heat_sink_inlet_temperature": "27 °C"}
+    here = with_model(facts({"guarantee": [{**PROMISE, "at": at}]}), 3600.0, 40.0)
+    (remark,) = guarantees.on_no_row(here)
+    assert remark.severity == "note"
+    assert figure(remark, "expected by the model at that condition").value == 3600.0
+    assert not list(guarantees.on_no_row(facts({"guarantee": [PROMISE]})))
 
 
 def with_model(facts: SystemFacts, value: float, uncertainty: float, *, fails: bool = False) -> SystemFacts:

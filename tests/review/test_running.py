@@ -10,7 +10,7 @@ import pytest
 
 from commission.review.facts import SystemFacts
 from commission.review.finding import Figure, Remark
-from commission.review.rules import duties, envelope, freezing, missing, people, stores
+from commission.review.rules import duties, envelope, freezing, low_pressure, missing, people, stores
 from commission.safety import charge_limits, substance_of
 
 Facts = Callable[..., SystemFacts]
@@ -94,6 +94,30 @@ def test_head_pressure_in_winter(facts: Facts, head_pressure: Any, condensing: f
         assert figure(found[0], "usually held above").text == "15.0 °C"
 
 
+@pytest.mark.parametrize(("stamped", "fires"), [("5 A", False), ("3 A", True)])
+def test_current_over_the_nameplate(facts: Facts, stamped: str, fires: bool) -> None:
+    """4 A on the hottest day are too much for a nameplate of 3 A."""
+    here = facts({"nameplate": {"rated_current": stamped}}, expected={"hottest": {"current": (4.0, 0.1)}})
+    found = list(envelope.over_the_nameplate_current(here))
+    assert [remark.severity for remark in found] == (["warning"] if fires else [])
+    if fires:
+        assert [f.value for f in found[0].figures] == [4.0, 3.0]
+
+
+@pytest.mark.parametrize(
+    ("system", "fires"),
+    [({"expansion": {"maximum_operating_pressure": "4 bar g"}}, False),
+     ({"expansion": {"maximum_operating_pressure": "2 bar g"}}, True),
+     ({"controls": {"crankcase_pressure_regulator": "2 bar g"}}, True)],
+)  # fmt: skip
+def test_suction_limit(facts: Facts, system: dict[str, Any], fires: bool) -> None:
+    """A limit of 2 bar g acts where 4 bar absolute are expected, one of 4 bar g does not."""
+    found = list(low_pressure.suction_limit(facts(system, expected={"design": {"suction_pressure": (4e5, 1e4)}})))
+    assert [remark.severity for remark in found] == (["warning"] if fires else [])
+    if fires:
+        assert figure(found[0], "limit").text == "2.00 bar g"
+
+
 LIQUID: dict[str, Any] = {
     "duty": "liquid_cooling",
     "heat_source": {"medium": "water", "space": None, "relative_humidity": None, "flow": None},
@@ -118,6 +142,18 @@ def test_brine_freezes_later(facts: Facts) -> None:
     assert not list(freezing.liquid_can_freeze(facts(brine, coldest={"design": -5 + CELSIUS})))
     (remark,) = freezing.liquid_can_freeze(facts(brine, coldest={"design": -14 + CELSIUS}))
     assert figure(remark, "freezing point of the propylene glycol").value == pytest.approx(-12.8 + CELSIUS, abs=0.7)
+
+
+@pytest.mark.parametrize(("setting", "severity"), [("3 °C", None), ("-1 °C", "error"), ("7.5 °C", "warning")])
+def test_frost_protection(facts: Facts, setting: str, severity: str | None) -> None:
+    """Water leaves at 7 °C: a protection at -1 °C comes too late, one at 7.5 °C too early."""
+    expected = {"design": {"heat_source_outlet_temperature": (7 + CELSIUS, 0.1)}}
+    here = facts({**LIQUID, "controls": {**LIQUID["controls"], "freeze_protection": setting}}, expected=expected)
+    found = list(freezing.protection_setting(here))
+    assert [remark.severity for remark in found] == ([severity] if severity else [])
+    for remark in found:
+        assert figure(remark, "frost protection").value == pytest.approx(float(setting.split()[0]) + CELSIUS)
+        assert figure(remark, "expected to leave at").text == "7.0 °C"
 
 
 @pytest.mark.parametrize(("defrost", "coldest", "fires"), [(None, -5, True), (None, 2, False), ({}, -5, False)])
@@ -247,7 +283,7 @@ def test_a_charge_over_the_limit_of_a_room(facts: Facts) -> None:
 
 
 def test_market_dates(facts: Facts) -> None:
-    """R-404A in a cold store (GWP 3922): no new one from 2030, a warning once that has passed; R-290 has no such date."""
+    """R-404A in a cold store (GWP 3922): none from 2030, a warning once that has passed; R-290 has no such date."""
     import datetime as dt
 
     here = facts({"refrigerant": "R-404A"})

@@ -59,3 +59,25 @@ def untraceable(plant: PlantFacts) -> Iterator[Remark]:
                 tuple(Figure("not written", words) for words in missing),
                 "Write serial number and calibration from the certificate.",
             )
+
+
+def expired_on_the_day(plant: PlantFacts) -> Iterator[Remark]:
+    """A filed record that was read with an instrument whose calibration had run out on that day.
+
+    Source: as `expired`; the calibration is the one frozen into the record, so a later renewal changes nothing.
+    """
+    from commission.records.history import history, in_force
+
+    for record in in_force(history(plant.loaded)):
+        day = record.started.date().isoformat()
+        for key, instrument in record.filed.instruments.items():
+            until = instrument.get("calibrated_until")
+            if until is None or until >= day:
+                continue
+            yield Remark(
+                "warning",
+                f"records/{record.path.name}",
+                f"The record of {day} was read with {key}, whose calibration had run out.",
+                (Figure("calibrated until", until), Figure("day of the record", day)),
+                "Have the instrument checked and, if it was off, read again and file a correcting record.",
+            )

@@ -118,7 +118,30 @@ def _end_figures(
 def duties(facts: SystemFacts) -> Iterator[Duty]:
     """Every stated point that says enough of the compressor's two pressures."""
     yield from _of_condensing_unit(facts)
+    yield from _of_compressor_table(facts)
     yield from _of_rated_points(facts)
+
+
+def _of_compressor_table(facts: SystemFacts) -> Iterator[Duty]:
+    table = facts.system.compressor.table
+    for index, point in enumerate(table.points if table else ()):
+        if table is None or point.cooling_capacity is None:
+            continue
+        evaporating = point.evaporating_temperature
+        stated = None if table.suction_temperature is None else max(0.0, table.suction_temperature - evaporating)
+        superheat = _stated_or_assumed(facts, table.suction_superheat if stated is None else stated, "rating_superheat")
+        path = facts.path("compressor", "table", "points", index)
+        yield Duty(
+            path,
+            f"Row {index + 1} of the compressor's table",
+            evaporating,
+            (point.condensing_temperature, point.condensing_temperature),
+            superheat,
+            _stated_or_assumed(facts, table.liquid_subcooling, "rating_subcooling"),
+            point.cooling_capacity,
+            (point.compressor_power, point.compressor_power),
+            path,
+        )
 
 
 def _of_condensing_unit(facts: SystemFacts) -> Iterator[Duty]:

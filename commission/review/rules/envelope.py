@@ -117,6 +117,29 @@ def head_pressure_hold(facts: SystemFacts) -> Iterator[Remark]:
     )
 
 
+def over_the_nameplate_current(facts: SystemFacts) -> Iterator[Remark]:
+    """A current expected above the largest current of the nameplate.
+
+    Source: the nameplate: cables and protection are chosen by it.
+    """
+    stamped = facts.system.nameplate.rated_current
+    for name in ("hottest", "design"):
+        expected = facts.expected(name, "current")
+        if stamped is None or expected is None or expected.value <= stamped:
+            continue
+        yield Remark(
+            "warning",
+            facts.path("nameplate", "rated_current"),
+            f"{facts.title} is expected to draw more than the current of its nameplate {facts.outlooks[name].name}.",
+            (
+                explained_figure(facts.plant, expected, "expected current"),
+                facts.plant.quantity("current", stamped, "nameplate"),
+            ),
+            "Check voltage and phases of the nameplate, and the setting of the motor protection.",
+        )
+        return
+
+
 def no_head_pressure_in_winter(facts: SystemFacts) -> Iterator[Remark]:
     """A thermostatic valve with nothing that keeps the condensing pressure up on the coldest day.
 

@@ -27,3 +27,29 @@ def changed_records(plant: PlantFacts) -> Iterator[Remark]:
             if found.state == "not listed"
             else "Bring back the file whose digest is printed on the signed page; never edit a filed record.",
         )
+
+
+def unreadable_records(plant: PlantFacts) -> Iterator[Remark]:
+    """A filed record that cannot be read any more, or whose own seal does not hold.
+
+    Source: the digest that each filed record carries of itself.
+    """
+    from commission.records.history import damaged, history
+
+    for problem in damaged(plant.loaded):
+        yield Remark(
+            "error",
+            f"records/{problem.file}",
+            f"A filed record cannot be read: {problem.message}.",
+            (),
+            "Bring back the file from a copy; never edit a filed record.",
+        )
+    for record in history(plant.loaded):
+        if not record.seal_holds:
+            yield Remark(
+                "error",
+                f"records/{record.path.name}",
+                f"The record of {record.started.date().isoformat()} was changed after it was filed.",
+                (),
+                "Bring back the file from a copy; a correction is a new record that names the old one.",
+            )

@@ -102,3 +102,35 @@ def off_cycle_cannot_melt(facts: SystemFacts) -> Iterator[Remark]:
         entry.source,
         entry.mark,
     )
+
+
+def protection_setting(facts: SystemFacts) -> Iterator[Remark]:
+    """A frost protection set at or below the freezing point, or above the liquid that is expected to leave.
+
+    Source: freezing point of the liquid: protection that acts after freezing protects nothing; set above the outlet of
+    the design condition it stops the machine at its own duty.
+    """
+    from commission.properties import liquid
+
+    medium, setting = facts.system.heat_source, facts.system.controls.freeze_protection
+    if medium.medium == "air" or setting is None:
+        return
+    freezing = liquid(medium.medium, medium.mass_fraction or 0.0).freezing_temperature
+    outlet = facts.expected("design", "heat_source_outlet_temperature")
+    late, early = setting <= freezing, outlet is not None and setting >= outlet.value
+    if not late and not early:
+        return
+    figures = [
+        facts.plant.figure("frost protection", setting, Kind.TEMPERATURE),
+        facts.plant.figure(f"freezing point of the {medium.medium}", freezing, Kind.TEMPERATURE),
+    ]
+    if outlet is not None:
+        figures.append(facts.plant.quantity("heat_source_outlet_temperature", outlet.value, "expected to leave at"))
+    yield Remark(
+        "error" if late else "warning",
+        facts.path("controls", "freeze_protection"),
+        f"The frost protection of {facts.title} acts "
+        + (f"only when the {medium.medium} is frozen." if late else "at the design condition already."),
+        tuple(figures),
+        "Set it between the freezing point and the coldest liquid of ordinary running, and prove it before the start.",
+    )

@@ -42,6 +42,28 @@ def not_the_table(facts: SystemFacts) -> Iterator[Remark]:
         )
 
 
+def on_no_row(facts: SystemFacts) -> Iterator[Remark]:
+    """A guarantee at a condition, or of a quantity, for which the supplier's table of the whole system has no row.
+
+    Source: common practice: what the table does not state rests on the model alone, and all sides must know it.
+    """
+    for index, guarantee in enumerate(facts.system.guarantee):
+        if _table_value(facts, guarantee) is not None:
+            continue
+        expected = _expected(facts, guarantee)
+        label = "expected by the model at that condition"
+        figures = [facts.plant.quantity(guarantee.quantity, guarantee.value_si, "guaranteed")]
+        if isinstance(expected, Explained):
+            figures.append(explained_figure(facts.plant, expected, label))
+        yield Remark(
+            "note",
+            facts.path("guarantee", index),
+            f"Guarantee {index + 1} of {facts.title} stands on no row of the supplier's table for the whole system.",
+            tuple(figures),
+            "Ask the supplier for this row, or agree in writing before the visit that the model stands in for it.",
+        )
+
+
 def cannot_be_carried(facts: SystemFacts) -> Iterator[Remark]:
     """A guarantee that is to be carried along the supplier's table where there is no such table.
 
@@ -107,23 +129,28 @@ def beyond_expectation(facts: SystemFacts) -> Iterator[Remark]:
     if facts.model is None:
         return
     for index, guarantee in enumerate(facts.system.guarantee):
-        at = {key: value for key, value in conditions_of(guarantee.at).items() if key in facts.model.condition_axes}
-        path = facts.path("guarantee", index)
-        try:
-            expected = facts.model.predict(at).expected.get(guarantee.quantity)
-        except CommissionError as error:
+        expected = _expected(facts, guarantee)
+        if isinstance(expected, str):
             yield Remark(
                 "warning",
-                path,
-                f"Guarantee {index + 1} of {facts.title} stands at a condition that cannot be calculated: "
-                f"{reason_of(error)}",
+                facts.path("guarantee", index),
+                f"Guarantee {index + 1} of {facts.title} stands at a condition that cannot be calculated: {expected}.",
                 (),
                 "Check the condition of the guarantee.",
             )
-            continue
-        if expected is None:
-            continue
-        yield from _against(facts, index, guarantee, expected)
+        elif expected is not None:
+            yield from _against(facts, index, guarantee, expected)
+
+
+def _expected(facts: SystemFacts, guarantee: Guarantee) -> Explained | str | None:
+    """What the model expects at the condition of a guarantee, or why it cannot; None without a model or a value."""
+    if facts.model is None:
+        return None
+    at = {key: value for key, value in conditions_of(guarantee.at).items() if key in facts.model.condition_axes}
+    try:
+        return facts.model.predict(at).expected.get(guarantee.quantity)
+    except CommissionError as error:
+        return reason_of(error)
 
 
 def _against(facts: SystemFacts, index: int, guarantee: Guarantee, expected: Explained) -> Iterator[Remark]:

@@ -96,3 +96,29 @@ def below_atmosphere(facts: SystemFacts) -> Iterator[Remark]:
             "low-pressure cut-out with this in mind.",
         )
         return
+
+
+def suction_limit(facts: SystemFacts) -> Iterator[Remark]:
+    """A valve (MOP) or crankcase pressure regulator set below the suction pressure of the design condition.
+
+    Source: such a limit is for pull-down; where it acts at the design condition the machine does not give its capacity.
+    """
+    expansion, controls = facts.system.expansion, facts.system.controls
+    limits = (
+        ("expansion.maximum_operating_pressure", expansion.maximum_operating_pressure if expansion else None),
+        ("controls.crankcase_pressure_regulator", controls.crankcase_pressure_regulator),
+    )
+    expected = facts.expected("design", "suction_pressure")
+    for key, setting in limits:
+        if setting is None or expected is None or facts.absolute(setting) > expected.value:
+            continue
+        yield Remark(
+            "warning",
+            facts.path(key),
+            f"A limit of the suction pressure of {facts.title} acts at the design condition already.",
+            (
+                facts.plant.figure("limit", facts.absolute(setting), Kind.PRESSURE),
+                explained_figure(facts.plant, expected, "expected suction pressure"),
+            ),
+            "Set it above the suction pressure of the design condition, and below what the motor bears in pull-down.",
+        )

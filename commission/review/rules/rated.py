@@ -149,3 +149,48 @@ def _cop_figures(facts: SystemFacts, key: str, easy: Row, hard: Row) -> tuple[Fi
             figures.append(facts.plant.quantity(temperature, hard.conditions[temperature], f"{label}, {hard.name}"))
             figures.append(facts.plant.quantity(temperature, easy.conditions[temperature], f"{label}, {easy.name}"))
     return tuple(figures)
+
+
+def speed_outside_the_drive(facts: SystemFacts) -> Iterator[Remark]:
+    """A rated point at a compressor speed outside the limits that are written of the drive.
+
+    Source: definition of the limits.
+    """
+    low, high = facts.system.compressor.minimum_speed, facts.system.compressor.maximum_speed
+    for index, point in facts.rated_points():
+        speed = point.compressor_speed
+        if speed is None or (low or 0.0) * 0.999 <= speed <= (high or speed) * 1.001:
+            continue
+        figures = [facts.plant.quantity("compressor_speed", speed, "speed of the rated point")]
+        figures += [facts.plant.quantity("compressor_speed", low, "lowest speed")] if low is not None else []
+        figures += [facts.plant.quantity("compressor_speed", high, "highest speed")] if high is not None else []
+        yield Remark(
+            "error",
+            facts.path("rated_points", index, "compressor_speed"),
+            f"Rated point {index + 1} of {facts.title} is at a speed that the compressor does not run at.",
+            tuple(figures),
+            "Check the speed of the point and the limits of the drive; both are shaft speeds.",
+        )
+
+
+def scatter(facts: SystemFacts) -> Iterator[Remark]:
+    """Rated points that scatter about every machine that could be fitted to them.
+
+    Source: residual standard deviation of the fit, n - p degrees of freedom (threshold `rated_scatter`).
+    """
+    found = facts.model.fitted.get("scatter of rated points about the fit") if facts.model else None
+    entry = facts.plant.threshold("rated_scatter")
+    if found is None or found.value <= entry.value:
+        return
+    yield Remark(
+        "warning",
+        facts.path("rated_points") if facts.system.rated_points else facts.path("condensing_unit", "rated_points"),
+        f"No one machine fits all that the supplier states of {facts.title}: the points scatter.",
+        (
+            facts.plant.figure("scatter of the points about the fit", found.value, Kind.RATIO, 1),
+            facts.plant.figure("usual for one table", entry.value, Kind.RATIO, 1),
+        ),
+        "Look for a row of another model, speed or superheat, and for columns exchanged.",
+        entry.source,
+        entry.mark,
+    )
