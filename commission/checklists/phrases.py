@@ -55,8 +55,22 @@ def _condition(facts: Facts) -> str | None:
     prediction = facts.predictions.get("expected")
     if prediction is None:
         return None
-    shown = [f"{NOMENCLATURE[key].label.lower()} {facts.display.of(key, value)}" for key, value in prediction.conditions.items()]
-    return ", ".join(shown)
+    return ", ".join(
+        f"{_short(facts, key)} {facts.display.of(key, value)}"
+        for key, value in prediction.conditions.items()
+        if NOMENCLATURE[key].kind in (Kind.TEMPERATURE, Kind.SPEED)
+    )
+
+
+def _short(facts: Facts, key: str) -> str:
+    """A condition as people on site say it: the room, outdoors, or the nomenclature's own label."""
+    from commission.checklists.words import outdoor_conditions
+
+    if key in outdoor_conditions(facts.loaded, facts.system_id):
+        return "outdoors"
+    if key == "heat_source_inlet_temperature" and facts.system.duty in ("cold_storage", "comfort_cooling"):
+        return "room"
+    return NOMENCLATURE[key].label.lower()
 
 
 def _instruments(facts: Facts) -> str | None:
@@ -105,7 +119,7 @@ def _charge_limits(facts: Facts) -> str | None:
     for space in charge_limits(facts.loaded, facts.system_id, facts.substance):
         if space.lowest is not None and space.lowest.value is not None:
             shown = facts.display.text(space.lowest.value.value, Kind.MASS)
-            texts.append(f"{space.name}: {shown} by {space.lowest.document}, {space.lowest.edition}")
+            texts.append(f"{space.name} {shown} by {space.lowest.document}, {space.lowest.edition}")
     return "; ".join(texts) or None
 
 

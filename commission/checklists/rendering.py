@@ -51,6 +51,8 @@ def show(value: float, kind: Kind, display: Display) -> str:
         return f"{value:.0f} s"
     if kind is Kind.NUMBER:
         return f"{value:g}"
+    if kind is Kind.DENSITY and value < 1 and display.system == "metric":
+        return f"{value * 1000:.3g} g/m³"
     return display.text(value, kind)
 
 
@@ -96,8 +98,7 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
     value, low, high = _range(numbers, within if isinstance(within, str) else None, kind, explained)
     text = _range_text(value, low, high, kind, facts.display)
     if within == "band" and low is not None and "expected." in _text_of(item):
-        condition = facts.lookup("words.condition")
-        text += f", expected at {condition.content} (95 % band of the calculation; the instrument's own comes on top)"
+        text += f", expected at {facts.lookup('words.condition').content}"
     return Target(f"{text}; {says}" if says else text, value, low, high, kind, None, explained)
 
 
@@ -154,7 +155,8 @@ def _range_text(value: float | None, low: float | None, high: float | None, kind
         return show(x, kind, display)
 
     if value is not None and low is not None and high is not None:
-        return f"{shown(value)}, within {shown(low)} to {shown(high)}"
+        bare = display.number(low, kind) if shown(low) == display.text(low, kind) else shown(low)
+        return f"{shown(value)}, within {bare} to {shown(high)}"
     if value is not None:
         return shown(value)
     if low is not None and high is not None:

@@ -149,13 +149,25 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
     if reading is not None:
         figures += reading.explained
     entry = item.entry
-    mark = entry.mark or ("practice" if entry.source.startswith("common practice") else "M")
+    mark = entry.mark or _mark_of(entry.source)
     return Item(
         id=entry.id, do=texts["do"], source=texts["source"], mark=mark, answer=entry.answer, how=texts.get("how"),
         must_read=reading, if_not=texts.get("if_not"), hazard=texts.get("hazard"), caution=texts.get("caution"),
         who=texts.get("who"), quantity=entry.quantity, unit=_unit(item, facts), figures=tuple(dict.fromkeys(figures)),
         note=note, left_out=item.left_out, origin=item.origin,
     )  # fmt: skip
+
+
+STATED = ("setting", "nameplate", "contract", "supplier", "agreement")
+
+
+def _mark_of(source: str) -> str:
+    """How sure a source is where the entry does not say: a clause that is cited was remembered, unless marked."""
+    if source.startswith("common practice"):
+        return "practice"
+    if source.startswith("design model"):
+        return "C"
+    return "stated" if source.startswith(STATED) else "M"
 
 
 def _unit(item: CheckedItem, facts: Facts) -> str | None:

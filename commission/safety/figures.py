@@ -36,7 +36,7 @@ def safety_figures(loaded: LoadedPlant, system_id: str, model: SystemModel | Non
     out = Collector()
     pressure_test_figures(loaded, system_id, out)
     standstill(loaded, system_id, fluid, out)
-    design_pressures(loaded, system, fluid, out)
+    design_pressures(loaded, system_id, fluid, out)
     limit_devices(loaded, system_id, fluid, model, out)
     evacuation_figures(loaded, system_id, substance, out)
     _charge(charge_limits(loaded, system_id, substance), substance, out)

@@ -41,6 +41,24 @@ def place(loaded: LoadedPlant, path: str) -> str:
     return str(loaded.where(path))
 
 
+def hottest_ambient(loaded: LoadedPlant, system_id: str) -> tuple[float, str] | None:
+    """The hottest air stated for a system in K, with its place: design weather, or a warmer rated or design point."""
+    found: list[tuple[float, str]] = []
+    summer = loaded.plant.plant.climate.summer_dry_bulb
+    if summer is not None:
+        found.append((summer, place(loaded, "plant.climate.summer_dry_bulb")))
+    system = loaded.system(system_id)
+    if system.heat_sink.medium == "air" and system.duty not in ("space_heating", "water_heating"):
+        points = [*system.rated_points, *(system.condensing_unit.rated_points if system.condensing_unit else ())]
+        for point in points:
+            if point.heat_sink_inlet_temperature is not None:
+                found.append((point.heat_sink_inlet_temperature, f"rated point, {place(loaded, f'systems.{system_id}')}"))
+        if system.design is not None and system.design.heat_sink_inlet_temperature is not None:
+            origin = place(loaded, f"systems.{system_id}.design.heat_sink_inlet_temperature")
+            found.append((system.design.heat_sink_inlet_temperature, origin))
+    return max(found, default=None)
+
+
 def stamped_pressures(loaded: LoadedPlant, system_id: str) -> tuple[Stamped, ...]:
     """The allowable pressures that the nameplate states, low side first."""
     plate = loaded.system(system_id).nameplate
@@ -139,13 +157,13 @@ def strength_test_steps(loaded: LoadedPlant, system_id: str, *, high_side: bool 
 
 def standstill(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:
     """Bubble-point pressure at the hottest design ambient: what the circuit holds when it stands, with liquid in it."""
-    hottest = loaded.plant.plant.climate.summer_dry_bulb
-    if hottest is None:
+    warmest = hottest_ambient(loaded, system_id)
+    if warmest is None:
         out.refuse("the hottest ambient is not stated: write plant.climate.summer_dry_bulb", "standstill_pressure")
         return
+    hottest, origin = warmest
     rule = Fact("standstill", 0.0, Kind.PRESSURE, "EN 378-2", "2016, 6.2.2", "V1",
                 "the allowable pressure must cover standstill; nameplates decide")  # fmt: skip
-    origin = place(loaded, "plant.climate.summer_dry_bulb")
     if hottest >= fluid.T_critical:
         out.refuse(
             f"{fluid.name} has no liquid at the hottest ambient: the standstill pressure follows charge and volume",
@@ -163,14 +181,16 @@ def standstill(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Col
             uncertainty=pressure * fluid.pressure_relative_uncertainty)  # fmt: skip
 
 
-def design_pressures(loaded: LoadedPlant, system: System, fluid: Refrigerant, out: Collector) -> None:
+def design_pressures(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:
     """Least allowable pressures by ambient class (EN 378-2, table 2): they question a nameplate, never replace it."""
     table = load("design_temperatures.yaml")
-    hottest = loaded.plant.plant.climate.summer_dry_bulb
+    system = loaded.system(system_id)
+    warmest = hottest_ambient(loaded, system_id)
     keys = ("design_pressure_high_side", "design_pressure_low_side")
-    if hottest is None:
+    if warmest is None:
         out.refuse("the hottest ambient is not stated: write plant.climate.summer_dry_bulb", *keys)
         return
+    hottest = warmest[0]
     limits = [read_value(t, Kind.TEMPERATURE) for t in table["ambient_at_most"]]
     column = next((i for i, limit in enumerate(limits) if hottest <= limit), None)
     if column is None:
@@ -247,21 +267,22 @@ def limit_devices(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, model
 
 def _hottest_day(loaded: LoadedPlant, system_id: str, model: SystemModel | None, out: Collector) -> None:
     keys = ("hottest_discharge_pressure", "high_pressure_margin")
-    hottest = loaded.plant.plant.climate.summer_dry_bulb
+    warmest = hottest_ambient(loaded, system_id)
     system = loaded.system(system_id)
     if model is None:
         out.refuse("the system could not be calculated", *keys)
         return
-    if hottest is None or system.heat_sink.medium != "air":
-        out.refuse("needs an air-cooled condenser and plant.climate.summer_dry_bulb", *keys)
+    if warmest is None or system.heat_sink.medium != "air" or system.duty in ("space_heating", "water_heating"):
+        out.refuse("needs a condenser cooled by outdoor air, and the hottest ambient", *keys)
         return
+    hottest, origin = warmest
     rule = Fact("hottest", hottest, Kind.TEMPERATURE, "design model", "", "C", "expected on the hottest design day")
     try:
         expected = model.predict({"heat_sink_inlet_temperature": hottest}).expected["discharge_pressure"]
     except (NotCalculatedError, KeyError) as error:
         out.refuse(f"no expected discharge pressure on the hottest day: {error}", *keys)
         return
-    inputs = (Input("hottest ambient", hottest, Kind.TEMPERATURE, place(loaded, "plant.climate.summer_dry_bulb")),)
+    inputs = (Input("hottest ambient", hottest, Kind.TEMPERATURE, origin),)
     out.add(keys[0], expected.value, expected.method, (*inputs, *expected.inputs), rule, assumptions=expected.assumptions,
             uncertainty=expected.uncertainty)  # fmt: skip
     setting = system.controls.high_pressure_limit
