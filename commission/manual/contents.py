@@ -10,13 +10,23 @@ from commission.manual import plant_pages, safety_pages, system_pages
 from commission.manual.book import Book, OwnerFile
 from commission.manual.checklist_pages import checklist_page
 from commission.manual.day_sheet import day_sheet
-from commission.manual.documents import copied_files, document_links, owner_pages
+from commission.manual.documents import address, copied_files, document_links, owner_pages
 from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.plots import Figure, charts, draw, ph_figure
+from commission.manual.records_pages import (
+    Archive,
+    certificates,
+    open_items_page,
+    read_archive,
+    record_page,
+    records_page,
+    visits,
+)
 from commission.manual.saturation import saturation_page
 from commission.manual.states import Standing
 from commission.manual.store import Store
+from commission.manual.test_pages import before_the_visit, test_sheets
 
 if TYPE_CHECKING:
     from commission.review import Finding
@@ -41,29 +51,43 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     documents, left_documents = copied_files(plant.loaded.folder)
     pages, left_pages = owner_pages(plant.loaded.folder)
     texts: dict[str, bytes] = {}
-    for path in ("search-index.js", "scripts/search.js", *(f.site_path for f in documents)):
+    archive = read_archive(plant)
+    for path in ("search-index.js", "scripts/search.js", *(f.site_path for f in (*documents, *archive.files) if f.sheet is None)):
         book.add_file(path)
 
     progress("reviewing")
     findings = review(plant.loaded)
-    standings = {d.id: Standing(d.because, 0, 0, (), bool(d.system.guarantee), 0) for d in plant.systems}
+    standings = {d.id: _standing(d, findings, archive) for d in plant.systems}
     counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
-    book.add(plant_pages.at_a_glance(plant, standings, 0, counts))
+    book.add(plant_pages.at_a_glance(plant, standings, sum(i.state == "open" for i in archive.items), counts))
     book.add(safety_pages.emergency_page(plant))
     for data in plant.systems:
-        _system(book, plant, data, documents, texts, store, progress)
+        _system(book, plant, data, documents, archive, texts, store, progress)
+    book.add(open_items_page(plant, archive))
     book.add(findings_page(plant, findings))
     book.add(plant_pages.instruments(plant))
     links = {"": document_links(plant.loaded, documents, None)}
     links |= {d.id: document_links(plant.loaded, documents, d.id) for d in plant.systems}
-    book.add(plant_pages.documents_page(plant, links, tuple(f.site_path for f in documents)))
-    for page in pages:
+    book.add(plant_pages.documents_page(plant, links, tuple(address(f) for f in documents)))
+    for page in (*documents, *pages):
         if page.sheet is not None:
             book.add(page.sheet)
     book.add(plant_pages.method_page())
     book.add(plant_pages.carry_page())
     book.add(plant_pages.search_page())
-    return Contents(book, (*documents, *pages), texts, findings, (*left_documents, *left_pages))
+    return Contents(book, (*documents, *pages, *archive.files), texts, findings, (*left_documents, *left_pages))
+
+
+def _standing(data: SystemData, findings: tuple[Finding, ...], archive: Archive) -> Standing:
+    own = [f for f in findings if f.system == data.id]
+    return Standing(
+        because=data.because,
+        errors=sum(f.severity == "error" for f in own),
+        warnings=sum(f.severity == "warning" for f in own),
+        visits=visits(archive, data.id),
+        promised=bool(data.system.guarantee),
+        open_items=sum(i.state == "open" and i.system == data.id for i in archive.items),
+    )
 
 
 def _system(
@@ -71,6 +95,7 @@ def _system(
     plant: PlantData,
     data: SystemData,
     documents: tuple[OwnerFile, ...],
+    archive: Archive,
     texts: dict[str, bytes],
     store: Store | None,
     progress: Callable[[str], None],
@@ -86,7 +111,15 @@ def _system(
     book.add(system_pages.what_it_is(plant, data, document_links(plant.loaded, documents, data.id)))
     book.add(system_pages.how_it_should_run(plant, data, weather, cycle))
     book.add(saturation_page(plant, data))
-    book.add(checklist_page(plant, data))
-    book.add(day_sheet(plant, data))
     book.add(safety_pages.safety_page(plant, data))
+    book.add(checklist_page(plant, data))
+    book.add(before_the_visit(plant, data))
+    for sheet in test_sheets(plant, data):
+        book.add(sheet)
+    book.add(day_sheet(plant, data))
+    book.add(records_page(plant, data, archive))
+    for record in archive.of(data.id):
+        book.add(record_page(plant, data, record, archive))
+    for sheet in certificates(plant, data, archive):
+        book.add(sheet)
     book.add(system_pages.assumptions(plant, data))

@@ -33,7 +33,7 @@ _HOW = {
     "heat_source_temperature_change": "inlet minus outlet",
     "heat_sink_temperature_change": "outlet minus inlet",
 }
-_MOST_COLUMNS = 9
+_MOST_COLUMNS = 11
 
 
 @dataclass(frozen=True, slots=True)
@@ -128,7 +128,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "tables": tables,
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),
-        "fixed": conditions_line(grid.fixed, display) if grid else "",
+        "fixed": conditions_line(plant, data, grid.fixed) if grid else "",
         "instruments": [
             (name, i.serial or "", i.calibrated_until.isoformat() if i.calibrated_until else "")
             for name, i in plant.loaded.plant.instruments.items()

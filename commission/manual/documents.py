@@ -41,15 +41,16 @@ def _walk(folder: Path) -> Iterator[Path]:
 
 
 def copied_files(plant_folder: Path) -> tuple[tuple[OwnerFile, ...], tuple[str, ...]]:
-    """The files below `documents/` to copy, and a sentence for each that is left out."""
+    """The files below `documents/`: copied, Markdown as pages; and a sentence for each that is left out."""
     folder = plant_folder / "documents"
     copied, left = [], []
     for path in _walk(folder):
         relative = path.relative_to(folder).as_posix()
         if path.suffix.lower() in _ACTIVE:
             left.append(f"documents/{relative} is not copied: a file of this type can run a program when it is opened")
-        elif path.suffix.lower() in {".md", ".markdown", ".mdown", ".mkdn", ".mkd"}:
-            left.append(f"documents/{relative} is not copied: Markdown belongs in pages/")
+        elif path.suffix.lower() == ".md":
+            sheet = Sheet(f"documents/{relative[:-3]}", _title(path), "documents", "owner.md", kicker="Documents")
+            copied.append(OwnerFile(f"documents/{relative}", path, sheet))
         else:
             copied.append(OwnerFile(f"documents/{relative}", path))
     return tuple(copied), tuple(left)
@@ -85,7 +86,7 @@ def _title(path: Path) -> str:
 
 def document_links(loaded: LoadedPlant, copied: tuple[OwnerFile, ...], system: str | None) -> tuple[DocumentLink, ...]:
     """The documents of the plant (`system` None) or of one system."""
-    paths = {f.site_path for f in copied}
+    pages = {f.site_path: address(f) for f in copied}
     documents = loaded.plant.documents if system is None else loaded.system(system).documents
     base = ("documents",) if system is None else ("systems", system, "documents")
     links = []
@@ -94,8 +95,13 @@ def document_links(loaded: LoadedPlant, copied: tuple[OwnerFile, ...], system: s
         because = None
         if document.file is not None:
             name = document.file.removeprefix("documents/")
-            wanted = f"documents/{name}"
-            if wanted not in paths:
-                wanted, because = None, f"the file documents/{name} is not in the plant folder"
+            wanted = pages.get(f"documents/{name}")
+            if wanted is None:
+                because = f"the file documents/{name} is not in the plant folder"
         links.append(DocumentLink(document.title, document.reference, wanted, because, str(loaded.where((*base, n)))))
     return tuple(links)
+
+
+def address(file: OwnerFile) -> str:
+    """What a page links to: the rendered page of a Markdown file, or the copied file."""
+    return file.sheet.id if file.sheet is not None else file.site_path

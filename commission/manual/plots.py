@@ -108,8 +108,8 @@ def _saturation(
 ) -> tuple[tuple[tuple[float, float], ...], tuple[tuple[float, float], ...]]:
     """Bubble and dew line over the pressures of the diagram, in kJ/kg and bar."""
     low = refrigerant.dew_temperature(min(s.p for s in states) / 2)
-    high = 0.985 * refrigerant.T_critical
-    temperatures = [low + (high - low) * n / 40 for n in range(41)]
+    high = refrigerant.T_high
+    temperatures = [low + (high - low) * n / 60 for n in range(61)]
     lines: list[tuple[tuple[float, float], ...]] = []
     for side in (refrigerant.bubble, refrigerant.dew):
         points = []

@@ -57,9 +57,9 @@ def _context(plant: PlantData, data: SystemData) -> dict[str, object]:
             display.number(row.T, Kind.TEMPERATURE, 0),
             display.number(row.p_bubble, Kind.PRESSURE),
             display.number(row.p_dew, Kind.PRESSURE),
-            n % 5 == 0,
+            round(display.convert(row.T, Kind.TEMPERATURE)) % (5 if display.system == "metric" else 10) == 0,
         )
-        for n, row in enumerate(table)
+        for row in table
     ]
     u = fluid.pressure_relative_uncertainty
     return {
@@ -70,5 +70,5 @@ def _context(plant: PlantData, data: SystemData) -> dict[str, object]:
         "temperature_unit": unit_of(display, Kind.TEMPERATURE),
         "pressure_unit": unit_of(display, Kind.PRESSURE),
         "uncertainty": f"Standard uncertainty of the pressures: {100 * u:.1g} % of the absolute pressure.",
-        "source": f"{fluid.property_source}.",
+        "source": f"equation of state in {fluid.property_source}.",
     }

@@ -45,9 +45,42 @@ def what_it_is(plant: PlantData, data: SystemData, documents: tuple[DocumentLink
     )
 
 
-def conditions_line(conditions: Mapping[str, float], display: Display) -> str:
-    """Conditions in one line of words."""
-    return ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in conditions.items() if k in NOMENCLATURE)
+_PARTS = (
+    ("inlet_temperature", "{} in"), ("outlet_temperature", "{} out"), ("wet_bulb", "{} wet bulb"),
+    ("relative_humidity", "{} relative humidity"), ("flow", "{}"),
+)  # fmt: skip
+
+
+def side_name(plant: PlantData, data: SystemData, side: str) -> str:
+    """A medium as people on site say it: `Cold room air`, `water`."""
+    medium = getattr(data.system, side)
+    if medium.medium != "air" or not medium.space:
+        return f"{medium.medium}, {side.replace('_', ' ')}"
+    space = plant.loaded.plant.spaces.get(medium.space)
+    return f"air of {(space.name if space else None) or medium.space}"
+
+
+def conditions_words(plant: PlantData, data: SystemData, conditions: Mapping[str, float]) -> tuple[tuple[str, str], ...]:
+    """Conditions by side: what, and its values in one line."""
+    display = plant.display
+    lines = []
+    for side, words in (("heat_source", "Heat source"), ("heat_sink", "Heat sink")):
+        values = [
+            form.format(display.of(f"{side}_{part}", conditions[f"{side}_{part}"]))
+            for part, form in _PARTS
+            if f"{side}_{part}" in conditions
+        ]
+        if values:
+            lines.append((f"{words}: {side_name(plant, data, side)}", ", ".join(values)))
+    others = {k: v for k, v in conditions.items() if not k.startswith(("heat_source", "heat_sink"))}
+    lines += [(label_of(k), display.of(k, v)) for k, v in others.items() if k in NOMENCLATURE]
+    return tuple(lines)
+
+
+def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str, float]) -> str:
+    """The same in one sentence part."""
+    lines = conditions_words(plant, data, conditions)
+    return "; ".join(f"{what.partition(': ')[2] or what.lower()} {values}" for what, values in lines)
 
 
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
@@ -188,11 +221,11 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
     if data.rated is not None:
         grid = data.grid
         context |= {
-            "condition": conditions_line(data.rated.conditions, display),
+            "conditions": conditions_words(plant, data, data.rated.conditions),
             "warnings": data.rated.warnings,
             "groups": expected_rows(data, display),
             "charts": figures,
-            "grid_note": _grid_note(data, grid, display) if grid else "",
+            "grid_note": _grid_note(plant, data, grid) if grid else "",
             "table": grid_table(data, grid, display) if grid else None,
             "ph": _ph_context(data, ph, display) if ph else None,
             "assumptions_page": data.page("assumptions"),
@@ -201,17 +234,17 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
     return Sheet(data.page("how-it-should-run"), "How it should run", data.group, "expected.html", context, data.kicker)
 
 
-def _grid_note(data: SystemData, grid: Grid, display: Display) -> str:
-    fixed = conditions_line(grid.fixed, display)
-    text = f"Everything else is at its rated value: {fixed}. " if fixed else ""
+def _grid_note(plant: PlantData, data: SystemData, grid: Grid) -> str:
+    display = plant.display
+    fixed = conditions_line(plant, data, grid.fixed)
+    text = f"Everything else is as rated: {fixed}. " if fixed else ""
     regimes = [(p.temperature, p.prediction.regime) for p in grid.points if p.prediction]
     changes = [(t, r) for (_, before), (t, r) in zip(regimes, regimes[1:], strict=False) if r != before]
     if changes:
-        first = regimes[0][1]
-        text += f"Below the change the plant runs with {first}"
-        text += "".join(f"; from about {display.text(t, Kind.TEMPERATURE, 0)} with {r}" for t, r in changes) + ". "
+        text += f"When it is cold: {regimes[0][1]}"
+        text += "".join(f"; from about {display.text(t, Kind.TEMPERATURE, 0)}: {r}" for t, r in changes) + ". "
     elif regimes:
-        text += f"Throughout with {regimes[0][1]}. "
+        text += f"Throughout: {regimes[0][1]}. "
     return text + "The tinted bands are plus and minus two standard uncertainties of the calculation."
 
 

@@ -28,13 +28,14 @@ def draw_ph(diagram: PhDiagram) -> bytes:
         figure, axes = new_figure(6.2, 4.4)
         figure.subplots_adjust(left=0.115, right=0.965, top=0.91, bottom=0.14)
         axes.set_yscale("log")
-        for line in (diagram.bubble, diagram.dew):
-            axes.plot([h for h, _ in line], [p for _, p in line], color=SOFT, linewidth=1.6)
+        dome = (*diagram.bubble, *reversed(diagram.dew))
+        axes.plot([h for h, _ in dome], [p for _, p in dome], color=SOFT, linewidth=1.6)
         h = [s[1] for s in diagram.states]
         p = [s[2] for s in diagram.states]
         axes.plot([*h, h[0]], [*p, p[0]], color=FIRST, linewidth=2.4, solid_joinstyle="round")
         axes.plot(h, p, linestyle="none", marker="o", markersize=6, color=FIRST)
-        low, high = min(p) / 1.9, max(p) * 2.4
+        top = max(q for _, q in diagram.bubble)
+        low, high = min(p) / 1.9, (top * 1.25 if top < 5 * max(p) else max(p) * 2.4)
         axes.set_ylim(low, high)
         _label_states(axes, diagram.states)
         axes.yaxis.set_major_locator(FixedLocator([v for v in _NICE if low <= v <= high]))

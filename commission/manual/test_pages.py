@@ -1,0 +1,279 @@
+"""Before the visit: can these instruments prove it? And the test sheet: what both sides sign before the test."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from itertools import product
+from typing import TYPE_CHECKING, Any
+
+from commission.errors import CommissionError, NotCalculatedError
+from commission.manual.book import Sheet, slug
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.showing import COVERAGE, How, band_text, label_of, show_how, unit_of
+from commission.manual.system_pages import conditions_words
+from commission.quantities import NOMENCLATURE, Display, Kind
+
+if TYPE_CHECKING:
+    from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, Target, TestSheet
+
+_SHEET_KEYS = (
+    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
+    "evaporator_temperature_difference", "compressor_superheat", "condenser_temperature_difference", "subcooling",
+    "heat_source_outlet_temperature", "heat_sink_outlet_temperature", "power_input", "current",
+)  # fmt: skip
+"""Expectations that are printed on a sheet; a frozen sheet holds all of them."""
+
+
+@dataclass(frozen=True, slots=True)
+class ProofRow:
+    """One reading: what is expected, with which instrument, and the smallest deviation that would be seen."""
+
+    label: str
+    expected: str
+    instrument: str
+    detectable: str
+    how: How
+
+
+def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
+    kind = NOMENCLATURE[r.key].kind
+    return ProofRow(
+        label_of(r.key),
+        display.text(r.expected.value, kind),
+        r.instrument or "from the readings above",
+        f"{display.spread(r.detectable, kind)} {display.spread_unit(kind)}".strip(),
+        show_how(r.expected, display, data.assumptions),
+    )
+
+
+def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
+    kind = NOMENCLATURE[g.terms.quantity].kind
+    measured = g.verdict.measured
+    spread = g.verdict.budget.expanded() if g.verdict.budget else None
+    return {
+        "label": label_of(g.terms.quantity),
+        "decided": g.decided,
+        "expected": display.text(measured.value, kind) if measured else None,
+        "limit": _limit(g, display, kind),
+        "expanded": f"{display.spread(spread, kind)} {display.spread_unit(kind)}".strip() if spread is not None else None,
+        "route": g.verdict.route,
+        "withheld": g.verdict.withheld,
+        "what": g.verdict.what_would_decide,
+    }
+
+
+def _limit(g: GuaranteeCapability, display: Display, kind: Kind) -> str:
+    d = g.decision
+    if d is None:
+        return ""
+    parts = [f"at least {display.text(d.limit_low, kind)}"] if d.limit_low is not None else []
+    parts += [f"at most {display.text(d.limit_high, kind)}"] if d.limit_high is not None else []
+    return " and ".join(parts)
+
+
+def _over_weather(plant: PlantData, data: SystemData) -> list[tuple[str, list[tuple[str, bool]]]]:
+    """For each temperature of the grid, whether each guarantee could be decided there."""
+    from commission.acceptance import capability
+
+    if data.grid is None or data.model is None or not data.system.guarantee:
+        return []
+    rows = []
+    for point in data.grid.points:
+        if point.prediction is None:
+            continue
+        found = capability(plant.loaded, data.model, {data.grid.key: point.temperature})
+        head = plant.display.text(point.temperature, Kind.TEMPERATURE, 0)
+        rows.append((head, [(label_of(g.terms.quantity), g.decided) for g in found.guarantees]))
+    return rows
+
+
+def before_the_visit(plant: PlantData, data: SystemData) -> Sheet:
+    """What the instruments of the plant can prove, at the rated condition and over the weather."""
+    from commission.acceptance import capability
+
+    context: dict[str, Any] = {"because": data.because}
+    if data.model is not None:
+        try:
+            found = capability(plant.loaded, data.model)
+            context |= _capability(plant, data, found)
+            context["weather"] = _over_weather(plant, data)
+            context["axis"] = data.grid.title if data.grid else ""
+        except NotCalculatedError as error:
+            context = {"because": error.problems[0].message}
+    return Sheet(data.page("before-the-visit"), "Before the visit", data.group, "before.html", context, data.kicker)
+
+
+def _capability(plant: PlantData, data: SystemData, found: Capability) -> dict[str, Any]:
+    assert data.rated is not None
+    display = plant.display
+    order = {k: n for n, k in enumerate(_SHEET_KEYS)}
+    readings = sorted(found.readings, key=lambda r: order.get(r.key, len(order)))
+    return {
+        "conditions": conditions_words(plant, data, data.rated.conditions),
+        "rows": [_proof(r, data, display) for r in readings],
+        "promises": [_promise(g, display) for g in found.guarantees],
+        "not_read": list(dict.fromkeys(found.not_read.values())),
+        "warnings": found.warnings,
+        "refusals": [(r.route, label_of(r.key), r.reason) for r in found.refusals],
+        "assumptions_page": data.page("assumptions"),
+    }
+
+
+@dataclass(frozen=True, slots=True)
+class SheetLine:
+    """One target over the last axis of a sheet."""
+
+    label: str
+    instruments: str
+    cells: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class SheetGrid:
+    """The targets at fixed values of all axes but the last."""
+
+    fixed: str
+    axis: str
+    heads: tuple[str, ...]
+    promised: tuple[SheetLine, ...]
+    expected: tuple[SheetLine, ...]
+
+
+def sheet_grids(sheet: TestSheet, display: Display) -> tuple[SheetGrid, ...]:
+    """A sheet as tables: columns along its last axis, one table for each combination of the others."""
+    *outer, last = sheet.axes
+    kind = NOMENCLATURE[last.key].kind
+    heads = tuple(display.text(v, kind, 0) for v in last.values)
+    grids = []
+    for n, values in enumerate(product(*(a.values for a in outer))):
+        fixed = ", ".join(f"{label_of(a.key).lower()} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True))
+        place = slice(n * len(last.values), (n + 1) * len(last.values))
+        expected = [t for t in sheet.targets_for("expectation") if t.key in _SHEET_KEYS]
+        expected.sort(key=lambda t: _SHEET_KEYS.index(t.key))
+        grids.append(
+            SheetGrid(
+                fixed,
+                label_of(last.key),
+                heads,
+                tuple(_promised_line(t, place, display) for t in sheet.targets_for("guarantee")),
+                tuple(_expected_line(t, place, display) for t in expected),
+            )
+        )
+    return tuple(grids)
+
+
+def _head(target: Target, display: Display) -> str:
+    kind = NOMENCLATURE[target.key].kind
+    unit = unit_of(display, kind)
+    return f"{label_of(target.key)}, {unit}" if unit else label_of(target.key)
+
+
+def _expected_line(target: Target, place: slice, display: Display) -> SheetLine:
+    kind = NOMENCLATURE[target.key].kind
+    cells = tuple(
+        (display.number(v, kind), band_text(display, kind, v, u))
+        for v, u in zip(target.values[place], target.uncertainties[place], strict=True)
+    )
+    return SheetLine(_head(target, display), ", ".join(target.instruments), cells)
+
+
+def _promised_line(target: Target, place: slice, display: Display) -> SheetLine:
+    kind = NOMENCLATURE[target.key].kind
+    cells = []
+    for value in target.values[place]:
+        low, high = target.terms.limits(value) if target.terms else (None, None)
+        limit = [f"at least {display.number(low, kind)}"] if low is not None else []
+        limit += [f"at most {display.number(high, kind)}"] if high is not None else []
+        cells.append((display.number(value, kind), " and ".join(limit)))
+    return SheetLine(_head(target, display), ", ".join(target.instruments), tuple(cells))
+
+
+def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
+    found = []
+    for t in sheet.targets_for("guarantee"):
+        if t.terms is None:
+            continue
+        kind = NOMENCLATURE[t.key].kind
+        at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in t.terms.at.items())
+        shares = [f"{display.text(v, Kind.RATIO, 1)} {w}" for v, w in ((t.terms.below, "below"), (t.terms.above, "above")) if v]
+        facts = [
+            ("Promised", f"{display.text(t.terms.value, kind)} at {at}"),
+            ("Tolerance", ", ".join(shares) or "none stated"),
+            ("Decision rule", f"{t.terms.rule} acceptance"),
+            ("Carried to the day by", t.terms.carried_by),
+            ("Measured by", t.terms.route or "the best route that can be used"),
+            ("Clause", t.terms.source or "not stated"),
+        ]
+        found.append({"label": label_of(t.key), "facts": [{"label": a, "text": b} for a, b in facts]})
+    return found
+
+
+def _sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: str | None) -> dict[str, Any]:
+    display = Display(plant.display.system, sheet.barometric_pressure)
+    return {
+        "because": None,
+        "frozen": frozen,
+        "title": sheet.title,
+        "prepared_for": sheet.prepared_for,
+        "digest": sheet.digest,
+        "description": sheet.description_digest,
+        "versions": list(sheet.versions.items()),
+        "held": conditions_words(plant, data, sheet.conditions),
+        "terms": _terms(sheet, display),
+        "grids": sheet_grids(sheet, display),
+        "instruments": [(name, list(words.items())) for name, words in sheet.instruments.items()],
+        "plant_name": plant.name,
+        "system_name": data.name,
+        "coverage": f"{COVERAGE:g}",
+    }
+
+
+def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
+    """The frozen sheets of a system, and a draft from the description as it stands."""
+    pages = []
+    frozen = frozen_sheets(plant, data)
+    links = []
+    for name, found in frozen.items():
+        page = data.page(f"test-sheet-{slug(name)}")
+        if isinstance(found, str):
+            links.append({"name": name, "page": None, "because": found})
+            continue
+        links.append({"name": name, "page": page, "because": None})
+        context = _sheet_context(plant, data, found, name) | {"sheets": []}
+        title = found.title or f"Test sheet {name}"
+        pages.append(Sheet(page, title, data.group, "test_sheet.html", context, data.kicker, listed=False, paper=True))
+    context = {"because": data.because or "the weather range of this system is not known", "sheets": links, "frozen": None}
+    if data.model is not None and data.grid is not None:
+        try:
+            context |= _sheet_context(plant, data, _draft(plant, data), None)
+        except CommissionError as error:
+            context["because"] = error.problems[0].message
+    first = Sheet(data.page("test-sheet"), "Test sheet", data.group, "test_sheet.html", context, data.kicker, paper=True)
+    return first, *pages
+
+
+def _draft(plant: PlantData, data: SystemData) -> TestSheet:
+    from commission.acceptance import make_sheet
+
+    assert data.model is not None
+    assert data.grid is not None
+    good = [p.temperature for p in data.grid.points if p.prediction is not None]
+    return make_sheet(plant.loaded, data.model, {data.grid.key: good}, title=f"{data.name}: draft")
+
+
+def frozen_sheets(plant: PlantData, data: SystemData) -> Mapping[str, TestSheet | str]:
+    """The sheets below `records/sheets` that are of this system, by name; a text where one cannot be read."""
+    from commission.acceptance import read_sheet
+
+    folder = plant.loaded.folder / "records" / "sheets"
+    found: dict[str, TestSheet | str] = {}
+    for path in sorted(folder.glob("*.yaml")) if folder.is_dir() else ():
+        try:
+            sheet = read_sheet(path)
+        except CommissionError as error:
+            found[path.stem] = error.problems[0].message
+            continue
+        if sheet.system == data.id:
+            found[path.stem] = sheet
+    return found
