@@ -15,8 +15,12 @@ from commission.description.model import (
 from commission.description.plant import LoadedPlant, load_plant
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.description.reading import ReadFile, read_yaml
+from commission.description.reference import KeyRow, json_schema, key_reference
+from commission.description.schedule import from_schedule
+from commission.description.starting import DUTIES, new_plant
 
 __all__ = [
+    "DUTIES",
     "MEASURED",
     "Assumption",
     "Conditions",
@@ -24,6 +28,7 @@ __all__ = [
     "Guarantee",
     "Instrument",
     "KeyPath",
+    "KeyRow",
     "LoadedPlant",
     "Part",
     "Plant",
@@ -35,7 +40,11 @@ __all__ = [
     "System",
     "assumptions_for",
     "check",
+    "from_schedule",
+    "json_schema",
+    "key_reference",
     "load_plant",
+    "new_plant",
     "read_yaml",
     "validate",
 ]

@@ -91,6 +91,7 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
     inside: KeyPath = tuple(part for part in error["loc"] if part != "[key]")
     path = (*at, *inside)
     context: Mapping[str, Any] = error.get("ctx") or {}
+    of_key = error["loc"][-1:] == ("[key]",)
     match error["type"]:
         case "extra_forbidden":
             known = known_keys(annotation_at(model_cls, inside[:-1]))
@@ -111,7 +112,12 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
             return positions.problem(path, "this word is not known here", allowed=_listed(choices), nearest=near)
         case "quantity" | "yes_no" | "date" | "meaning":
             return positions.problem(
-                path, str(context["message"]), allowed=context.get("allowed"), nearest=context.get("nearest")
+                path,
+                str(context["message"]),
+                allowed=context.get("allowed"),
+                nearest=context.get("nearest"),
+                at_key=of_key,
+                value=str(inside[-1]) if of_key else None,
             )
         case "too_short" | "too_long":
             return positions.problem(path, _wrong_length(context))

@@ -176,6 +176,17 @@ Count = Annotated[
 ]
 
 
+def _identity(value: Any) -> str:
+    if isinstance(value, str) and len(value) <= 60 and re.fullmatch(r"\w(?:[\w .\-]*\w)?", value):
+        return value
+    allowed = "letters, digits, spaces, hyphens, underscores and full stops, at most 60, a letter or digit at both ends"
+    message = {"message": "this cannot be an id", "allowed": allowed}
+    raise PydanticCustomError("quantity", "{message}", message)
+
+
+Identity = Annotated[str, BeforeValidator(_identity), WithJsonSchema({"type": "string"}), Meaning(None, "an id")]
+
+
 def _relative_file(value: Any) -> str:
     """A file inside the plant's folder: never an absolute path and never upwards."""
     allowed = "a path inside the plant's folder with forward slashes, such as documents/unit.pdf"

@@ -242,7 +242,7 @@ def _row(cells: list[tuple[Column, Cell]], row: tuple[Cell, ...], sheet: _Sheet)
         _put(sheet, system, path, column.key, text, one)
     duty = system.get("duty", "")
     for side, medium in zip(("heat_source", "heat_sink"), _MEDIA_OF_DUTY.get(duty, ()), strict=False):
-        system.setdefault(side, {}).setdefault("medium", medium)
+        system[side] = {"medium": medium, **system.get(side, {})}
 
 
 def _text(column: Column, text: str) -> str:

@@ -19,12 +19,18 @@ _ORDER = (
 )  # fmt: skip
 _TO_ADD = """\
     # Add what is known; each fact replaces an assumption that the manual would show instead:
-    #charge: 0.9 kg
-    #nameplate: {allowable_pressure_low: 17 bar g, allowable_pressure_high: 28 bar g}
-    #compressor: {type: scroll, drive: fixed speed}
-    #expansion: {device: thermostatic valve, superheat: 6 K}
-    #controls: {high_pressure_limit: 22 bar g}
+    #charge: {charge}
+    #nameplate: {{allowable_pressure_low: {low}, allowable_pressure_high: {high}}}
+    #compressor: {{type: scroll, drive: fixed speed}}
+    #expansion: {{device: thermostatic valve, superheat: {superheat}}}
+    #controls: {{high_pressure_limit: {limit}}}
 """
+_AS_WRITTEN = {
+    "metric": {"altitude": "310 m", "charge": "0.9 kg", "low": "17 bar g", "high": "28 bar g", "superheat": "6 K",
+               "limit": "22 bar g"},
+    "us_customary": {"altitude": "1000 ft", "charge": "2 lb", "low": "250 psig", "high": "450 psig",
+                     "superheat": "10 °F difference", "limit": "400 psig"},
+}  # fmt: skip
 
 
 def description_text(
@@ -38,8 +44,9 @@ def description_text(
     origin = f"# Made from {_comment(schedule)}, one system for each row."
     head = f"{HINT}#\n{origin} Look through it, then add what is known.\n"
     parts = [head, "plant:\n", *_block(data["plant"], 2)]
+    such_as = _AS_WRITTEN[data["plant"]["units"]]
     parts.append(
-        "  #altitude: 310 m                       # sets the barometric pressure, and with it every gauge pressure\n"
+        f"  #altitude: {such_as['altitude']}    # sets the barometric pressure, and with it every gauge pressure\n"
     )
     if "spaces" in data:
         parts += ["\nspaces:\n", *_block(data["spaces"], 2)]
@@ -51,13 +58,13 @@ def description_text(
         )
         ordered = {key: system[key] for key in sorted(system, key=_place)}
         parts += [*_block(ordered, 4), *(f"    # {_comment(note)}\n" for note in notes.get(identity, ()))]
-        parts += [*_lines_to_add(system), "\n"]
+        parts += [*_lines_to_add(system, such_as), "\n"]
     return "".join(parts).rstrip("\n") + "\n"
 
 
-def _lines_to_add(system: Mapping[str, Any]) -> Iterator[str]:
-    """The lines of `_TO_ADD` whose keys the system does not have yet."""
-    for line in _TO_ADD.splitlines(keepends=True):
+def _lines_to_add(system: Mapping[str, Any], such_as: Mapping[str, str]) -> Iterator[str]:
+    """The lines of `_TO_ADD` whose keys the system does not have yet, with values in the units of the plant."""
+    for line in _TO_ADD.format(**such_as).splitlines(keepends=True):
         key = line.strip().lstrip("#").partition(":")[0]
         if key not in system:
             yield line

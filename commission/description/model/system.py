@@ -6,7 +6,17 @@ from typing import Literal
 
 from pydantic import Field
 
-from commission.description.fields import Current, Date, FileName, GaugeOrAbsolute, Mass, Voltage, Volume, YesNo
+from commission.description.fields import (
+    Current,
+    Date,
+    FileName,
+    GaugeOrAbsolute,
+    Identity,
+    Mass,
+    Voltage,
+    Volume,
+    YesNo,
+)
 from commission.description.model.base import Document, Duty, Part
 from commission.description.model.controls import Controls
 from commission.description.model.instruments import Instrument
@@ -110,9 +120,11 @@ class Plant(Part):
 
     include: tuple[FileName, ...] = Field((), description="further files, such as systems/chiller.yaml")
     plant: Site = Field(description="the plant as a whole")
-    spaces: dict[str, Space] = Field(default_factory=dict, description="every room that leaking refrigerant can reach")
-    instruments: dict[str, Instrument] = Field(default_factory=dict, description="gauges, probes and meters")
-    systems: dict[str, System] = Field(min_length=1, description="the refrigerating systems by id")
+    spaces: dict[Identity, Space] = Field(
+        default_factory=dict, description="every room that leaking refrigerant can reach"
+    )
+    instruments: dict[Identity, Instrument] = Field(default_factory=dict, description="gauges, probes and meters")
+    systems: dict[Identity, System] = Field(min_length=1, description="the refrigerating systems by id")
     documents: tuple[Document, ...] = Field((), description="documents of the plant as a whole")
     refrigerants: dict[str, dict[str, FigureOverride]] = Field(
         default_factory=dict, description="figures that replace those of the refrigerant register, by designation"
