@@ -1,4 +1,4 @@
-"""Checklists: what to do on site and in which order, as data; values are filled in from the plant and its predictions."""
+"""Checklists: what to do on site and in which order, as data; values come from plant and predictions."""
 
 from commission.checklists.library import ChecklistError
 from commission.checklists.rendering import Target

@@ -1,4 +1,4 @@
-"""The shape of checklist data: stages and items as a person writes them, in the shipped library and in a plant folder."""
+"""The shape of checklist data: stages and items as a person writes them, shipped or in a plant folder."""
 
 from __future__ import annotations
 
@@ -20,7 +20,9 @@ class MustRead(Entry):
     """What a reading must be: a value with a margin, or bounds; each an expression or a quoted quantity."""
 
     value: str | None = Field(None, description="what it should be, an expression")
-    within: str | None = Field(None, description="margin on both sides, a quantity or a share in %, or 'band' for the expected band")
+    within: str | None = Field(
+        None, description="margin on both sides, a quantity or a share in %, or 'band' for the expected band"
+    )
     at_least: str | None = Field(None, description="lower bound, an expression or quantity")
     at_most: str | None = Field(None, description="upper bound, an expression or quantity")
     says: str | None = Field(None, description="words beside the figures, or alone")

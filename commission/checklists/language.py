@@ -32,9 +32,17 @@ _DIFFERENCE: Mapping[Kind, Kind] = {
 }
 _BINARY: Mapping[type[ast.operator], str] = {ast.Add: "+", ast.Sub: "-", ast.Mult: "*", ast.Div: "/"}
 _COMPARISON: Mapping[type[ast.cmpop], str] = {
-    ast.Eq: "==", ast.NotEq: "!=", ast.Lt: "<", ast.LtE: "<=", ast.Gt: ">", ast.GtE: ">=",
-    ast.In: "in", ast.NotIn: "not in", ast.Is: "is", ast.IsNot: "is not",
-}  # fmt: skip
+    ast.Eq: "==",
+    ast.NotEq: "!=",
+    ast.Lt: "<",
+    ast.LtE: "<=",
+    ast.Gt: ">",
+    ast.GtE: ">=",
+    ast.In: "in",
+    ast.NotIn: "not in",
+    ast.Is: "is",
+    ast.IsNot: "is not",
+}
 
 
 class ExpressionError(InputError):
@@ -214,7 +222,7 @@ class _Checker:
         if result is None:
             raise self.fail(
                 f"{_word(left)} {operator} {_word(right)} has no meaning here",
-                "the same kind on both sides of + and -; a number beside * and /; a temperature or pressure is not multiplied",
+                "the same kind on both sides of + and -; a number beside * and /, never with a temperature or pressure",
             )
         return result
 
@@ -263,12 +271,21 @@ class _Checker:
         assert isinstance(quoted, ast.Constant)
         choices = self.name(named).choices
         if choices and quoted.value not in choices:
-            raise self.fail(f"{quoted.value!r} is no word that {dotted_name(named)} can take", ", ".join(choices),
-                            nearest(str(quoted.value), choices))  # fmt: skip
+            raise self.fail(
+                f"{quoted.value!r} is no word that {dotted_name(named)} can take",
+                ", ".join(choices),
+                nearest(str(quoted.value), choices),
+            )
 
 
 def _what(node: ast.AST) -> str:
-    names = {"Call": "a call", "Subscript": "an index", "Lambda": "a lambda", "IfExp": "if ... else", "Starred": "a star"}
+    names = {
+        "Call": "a call",
+        "Subscript": "an index",
+        "Lambda": "a lambda",
+        "IfExp": "if ... else",
+        "Starred": "a star",
+    }
     return names.get(type(node).__name__, f"this ({type(node).__name__})")
 
 

@@ -118,7 +118,9 @@ def _add(stages: list[CheckedStage], entry: StageEntry, positions: Positions) ->
             at = known.index(entry.after) + 1
         for wanted in ("title", "purpose"):
             if getattr(entry, wanted) is None:
-                problems.append(positions.problem(("stage",), f"a new stage wants a {wanted}", nearest=nearest(entry.stage, known)))
+                problems.append(
+                    positions.problem(("stage",), f"a new stage wants a {wanted}", nearest=nearest(entry.stage, known))
+                )
         stages.insert(at, CheckedStage(entry.stage, entry.title or "", Template(()), ()))
     stage = stages[at]
     title, purpose = entry.title or stage.title, stage.purpose
@@ -134,7 +136,9 @@ def _add(stages: list[CheckedStage], entry: StageEntry, positions: Positions) ->
         index = next((k for k, x in enumerate(items) if x.entry.id == left.id), None)
         if index is None:
             known = [x.entry.id for x in items]
-            problems.append(_unknown(positions, ("leave_out", i, "id"), left.id, known, f"item of the stage {stage.id}"))
+            problems.append(
+                _unknown(positions, ("leave_out", i, "id"), left.id, known, f"item of the stage {stage.id}")
+            )
         else:
             items[index] = replace(items[index], left_out=left.reason)
     stages[at] = CheckedStage(stage.id, title, purpose, tuple(items))
@@ -142,19 +146,29 @@ def _add(stages: list[CheckedStage], entry: StageEntry, positions: Positions) ->
 
 
 def _place(
-    stages: Sequence[CheckedStage], items: list[CheckedItem], item: CheckedItem, positions: Positions,
-    path: tuple[str | int, ...], at: int,
-) -> list[Problem]:  # fmt: skip
+    stages: Sequence[CheckedStage],
+    items: list[CheckedItem],
+    item: CheckedItem,
+    positions: Positions,
+    path: tuple[str | int, ...],
+    at: int,
+) -> list[Problem]:
     """Put an item where it belongs: over the one with its id, after the named one, or at the end."""
     identity = item.entry.id
-    elsewhere = next((s.id for i, s in enumerate(stages) if i != at and any(x.entry.id == identity for x in s.items)), None)
+    elsewhere = next(
+        (s.id for i, s in enumerate(stages) if i != at and any(x.entry.id == identity for x in s.items)), None
+    )
     if elsewhere is not None:
         message = f"an item with this id stands in the stage {elsewhere}"
         return [positions.problem((*path, "id"), message, allowed="an id that is used once")]
     same = next((k for k, x in enumerate(items) if x.entry.id == identity), None)
     if same is not None:
         if items[same].origin.partition(":")[0] == item.origin.partition(":")[0]:
-            return [positions.problem((*path, "id"), "this id is used twice in this file", allowed="an id that is used once")]
+            return [
+                positions.problem(
+                    (*path, "id"), "this id is used twice in this file", allowed="an id that is used once"
+                )
+            ]
         items[same] = item
         return []
     if item.entry.after is None:
@@ -178,19 +192,40 @@ def _moves(stages: Sequence[CheckedStage]) -> list[Problem]:
             file, _, line = item.origin.partition(":")
             row = int(line) if line.isdigit() else None
             if move is not None and move.to not in known:
-                problems.append(Problem("no stage has this id", file, row, path=item.entry.id, value=move.to,
-                                        allowed=", ".join(known), nearest=nearest(move.to, known)))  # fmt: skip
+                problems.append(
+                    Problem(
+                        "no stage has this id",
+                        file,
+                        row,
+                        path=item.entry.id,
+                        value=move.to,
+                        allowed=", ".join(known),
+                        nearest=nearest(move.to, known),
+                    )
+                )
             elif move is not None and move.after is not None and move.after not in known[move.to]:
-                problems.append(Problem(f"no item of the stage {move.to} has this id", file, row, path=item.entry.id,
-                                        value=move.after, nearest=nearest(move.after, known[move.to])))  # fmt: skip
+                problems.append(
+                    Problem(
+                        f"no item of the stage {move.to} has this id",
+                        file,
+                        row,
+                        path=item.entry.id,
+                        value=move.after,
+                        nearest=nearest(move.after, known[move.to]),
+                    )
+                )
     return problems
 
 
 def _unknown(positions: Positions, path: tuple[str | int, ...], word: str, known: Sequence[str], what: str) -> Problem:
-    return positions.problem(path, f"no {what} has this id", allowed=", ".join(known) or None, nearest=nearest(word, known))
+    return positions.problem(
+        path, f"no {what} has this id", allowed=", ".join(known) or None, nearest=nearest(word, known)
+    )
 
 
-def check_item(entry: ItemEntry, positions: Positions, path: tuple[str | int, ...]) -> tuple[CheckedItem, list[Problem]]:
+def check_item(
+    entry: ItemEntry, positions: Positions, path: tuple[str | int, ...]
+) -> tuple[CheckedItem, list[Problem]]:
     """Read every expression and text of an item; all problems, each at its place."""
     problems: list[Problem] = []
 
@@ -203,7 +238,9 @@ def check_item(entry: ItemEntry, positions: Positions, path: tuple[str | int, ..
             problems.append(_at(error, positions, (*path, *where)))
             return None
         if truth and found.type != "yes/no":
-            problems.append(positions.problem((*path, *where), "a condition is wanted here, something that is yes or no"))
+            problems.append(
+                positions.problem((*path, *where), "a condition is wanted here, something that is yes or no")
+            )
         return found
 
     if not IDENTITY.fullmatch(entry.id):
@@ -228,7 +265,9 @@ def check_item(entry: ItemEntry, positions: Positions, path: tuple[str | int, ..
 
 def _at(error: ExpressionError, positions: Positions, path: tuple[str | int, ...]) -> Problem:
     problem = error.problems[0]
-    return positions.problem(path, problem.message, allowed=problem.allowed, nearest=problem.nearest, value=problem.value)
+    return positions.problem(
+        path, problem.message, allowed=problem.allowed, nearest=problem.nearest, value=problem.value
+    )
 
 
 def _template(text: str, positions: Positions, path: tuple[str | int, ...]) -> tuple[Template, list[Problem]]:
@@ -245,7 +284,9 @@ def _template(text: str, positions: Positions, path: tuple[str | int, ...]) -> t
         if inner is None:
             continue
         if form or conversion:
-            problems.append(positions.problem(path, f"{{{inner}}} takes no format", allowed="a name or expression alone"))
+            problems.append(
+                positions.problem(path, f"{{{inner}}} takes no format", allowed="a name or expression alone")
+            )
             continue
         try:
             parts.append(read_expression(inner, names()))
@@ -262,7 +303,7 @@ def _bounds(
     problems: list[Problem] = []
     found: dict[str, Expression | str] = {}
     kinds: set[Kind] = set()
-    wanted = NOMENCLATURE[entry.quantity].kind if entry.quantity in NOMENCLATURE else None
+    wanted = NOMENCLATURE[entry.quantity].kind if entry.quantity and entry.quantity in NOMENCLATURE else None
     if wanted is None and entry.unit is not None:
         wanted = kind_of_unit(entry.unit)
     for key in ("value", "at_least", "at_most"):
@@ -279,7 +320,11 @@ def _bounds(
             problems.append(_at(error, positions, where))
             continue
         if not isinstance(expression.type, Kind):
-            problems.append(positions.problem(where, "a quantity is wanted here", allowed="an expression or a quantity with its unit"))
+            problems.append(
+                positions.problem(
+                    where, "a quantity is wanted here", allowed="an expression or a quantity with its unit"
+                )
+            )
             continue
         kinds.add(expression.type)
         found[key] = expression
@@ -306,8 +351,13 @@ def kind_of_unit(unit: str) -> Kind | None:
 def _answer(entry: ItemEntry, positions: Positions, path: tuple[str | int, ...]) -> list[Problem]:
     problems = []
     if entry.quantity is not None and entry.quantity not in NOMENCLATURE:
-        problems.append(positions.problem((*path, "quantity"), "no quantity of the nomenclature has this key",
-                                          nearest=nearest(entry.quantity, NOMENCLATURE)))  # fmt: skip
+        problems.append(
+            positions.problem(
+                (*path, "quantity"),
+                "no quantity of the nomenclature has this key",
+                nearest=nearest(entry.quantity, NOMENCLATURE),
+            )
+        )
     if entry.unit is not None and kind_of_unit(entry.unit) is None:
         problems.append(positions.problem((*path, "unit"), "this unit is not known"))
     if entry.answer == "value" and entry.quantity is None and entry.unit is None:

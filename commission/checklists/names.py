@@ -51,7 +51,11 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "source.outdoors": ("yes/no", "heat is taken from outdoor air", ()),
         "piped.on_site": ("yes/no", "refrigerant pipes are joined on site: not factory sealed", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),
-        "rotation.matters": ("yes/no", "a compressor that turning backwards harms: scroll, screw or rotary, on three phases", ()),
+        "rotation.matters": (
+            "yes/no",
+            "a compressor that turning backwards harms: scroll, screw or rotary, on three phases",
+            (),
+        ),
         "words.system": ("text", "name of the system", ()),
         "words.evaporator_space": ("text", "name of the space of the evaporator", ()),
         "words.condensing_space": ("text", "name of the space of the condensing unit", ()),

@@ -79,7 +79,11 @@ def _instruments(facts: Facts) -> str | None:
     chosen = {key: item for key, item in listed.items() if key in wanted} or listed
     texts = []
     for key, item in chosen.items():
-        until = f"calibrated until {item.calibrated_until.isoformat()}" if item.calibrated_until else "no calibration stated"
+        until = (
+            f"calibrated until {item.calibrated_until.isoformat()}"
+            if item.calibrated_until
+            else "no calibration stated"
+        )
         texts.append(f"{key} ({item.serial or 'no serial stated'}, {until})")
     return "; ".join(texts) or None
 
@@ -107,8 +111,11 @@ def _label(facts: Facts) -> str:
 def _guarantees(facts: Facts) -> str | None:
     texts = []
     for promise in facts.system.guarantee:
-        at = [f"{NOMENCLATURE[key].label.lower()} {facts.display.of(key, value)}"
-              for key, value in promise.at.model_dump().items() if value is not None and key in NOMENCLATURE]  # fmt: skip
+        at = [
+            f"{NOMENCLATURE[key].label.lower()} {facts.display.of(key, value)}"
+            for key, value in promise.at.model_dump().items()
+            if value is not None and key in NOMENCLATURE
+        ]
         label = NOMENCLATURE[promise.quantity].label.lower()
         texts.append(f"{label} {promise.value} at {', '.join(at)}, decided by the {promise.decision} rule")
     return "; ".join(texts) or None

@@ -23,8 +23,8 @@ if TYPE_CHECKING:
 class Item:
     """One act or observation, ready to be shown.
 
-    `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown), yes/no, a
-    file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated numbers in its
+    `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown), yes/no,
+    a file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated numbers in its
     texts. `note` says why an item is shown although a fact it depends on is not known. `left_out` holds the reason
     where the plant's own list leaves the item out. `origin` is the data file and line.
     """
@@ -96,7 +96,12 @@ def stages(
     for item, note in moved:
         _insert(placed, item, note)
     return tuple(
-        Stage(stage.id, stage.title, fill(stage.purpose, facts)[0], tuple(render(i, n, facts) for i, n in placed[stage.id]))
+        Stage(
+            stage.id,
+            stage.title,
+            fill(stage.purpose, facts)[0],
+            tuple(render(i, n, facts) for i, n in placed[stage.id]),
+        )
         for stage in checked
         if placed[stage.id]
     )
@@ -104,7 +109,7 @@ def stages(
 
 def facts_of(
     loaded: LoadedPlant, system_id: str, model: SystemModel | None, conditions: Mapping[str, float] | None
-) -> Facts:  # fmt: skip
+) -> Facts:
     """Everything the checklist of one system is worked out from."""
     from commission.properties import refrigerant
 
@@ -151,11 +156,24 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
     entry = item.entry
     mark = entry.mark or _mark_of(entry.source)
     return Item(
-        id=entry.id, do=texts["do"], source=texts["source"], mark=mark, answer=entry.answer, how=texts.get("how"),
-        must_read=reading, if_not=texts.get("if_not"), hazard=texts.get("hazard"), caution=texts.get("caution"),
-        who=texts.get("who"), quantity=entry.quantity, unit=_unit(item, facts), figures=tuple(dict.fromkeys(figures)),
-        note=note, left_out=item.left_out, origin=item.origin,
-    )  # fmt: skip
+        id=entry.id,
+        do=texts["do"],
+        source=texts["source"],
+        mark=mark,
+        answer=entry.answer,
+        how=texts.get("how"),
+        must_read=reading,
+        if_not=texts.get("if_not"),
+        hazard=texts.get("hazard"),
+        caution=texts.get("caution"),
+        who=texts.get("who"),
+        quantity=entry.quantity,
+        unit=_unit(item, facts),
+        figures=tuple(dict.fromkeys(figures)),
+        note=note,
+        left_out=item.left_out,
+        origin=item.origin,
+    )
 
 
 STATED = ("setting", "nameplate", "contract", "supplier", "agreement")

@@ -77,7 +77,7 @@ def predictions(
     found: dict[str, Prediction] = {}
     missing: dict[str, str] = {}
     climate = loaded.plant.plant.climate
-    wanted: dict[str, Mapping[str, float] | None | str] = {"expected": conditions}
+    wanted: dict[str, Mapping[str, float] | str | None] = {"expected": conditions}
     for word, temperature in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
         wanted[word] = _on_day(model, outdoor_conditions(loaded, system_id), word, temperature)
     for word, at in wanted.items():

@@ -1,4 +1,4 @@
-"""Safety figures with document, edition and mark: pressures, evacuation, charge, leak checks, hazards, emergency card."""
+"""Safety figures with document, edition and mark: pressures, evacuation, charge, leak checks, hazards, the card."""
 
 from commission.safety.card import CardSection, EmergencyCard, emergency_card
 from commission.safety.charge import ADVICE, SpaceCharge, charge_limits
@@ -11,8 +11,8 @@ from commission.safety.leaks import LeakDuty, label_text, leak_duty
 from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, limit_order
 from commission.safety.limits import ChargeLimit
 from commission.safety.people import Hazards, Level, hazards
-from commission.safety.pressures import strength_test_steps
 from commission.safety.register import substance_of
+from commission.safety.strength import strength_test_steps
 from commission.safety.substance import Substance
 
 __all__ = [

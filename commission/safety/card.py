@@ -24,12 +24,29 @@ if TYPE_CHECKING:
 
 FILE = "emergency_card.yaml"
 TAGS = (
-    "flammable", "not_flammable", "higher_flammable", "toxic", "not_toxic", "carbon_dioxide", "not_carbon_dioxide",
-    "heavy", "light", "walk_in",
-)  # fmt: skip
+    "flammable",
+    "not_flammable",
+    "higher_flammable",
+    "toxic",
+    "not_toxic",
+    "carbon_dioxide",
+    "not_carbon_dioxide",
+    "heavy",
+    "light",
+    "walk_in",
+)
 WORDS = (
-    "system", "refrigerant", "charge", "where", "rooms", "owner", "contractor", "effects", "levels", "emergency_number",
-)  # fmt: skip
+    "system",
+    "refrigerant",
+    "charge",
+    "where",
+    "rooms",
+    "owner",
+    "contractor",
+    "effects",
+    "levels",
+    "emergency_number",
+)
 TO_FILL = "________________"
 """What stands on the printed page where the description says nothing: room to write."""
 
@@ -82,7 +99,7 @@ def emergency_card(loaded: LoadedPlant, system_id: str, substance: Substance, di
     card, replaced = (_read(own), True) if own.is_file() else (_shipped(), False)
     system = loaded.system(system_id)
     hazard = hazards(substance)
-    tags = _card_tags(loaded, system, hazard)
+    tags = _card_tags(system, hazard)
     words = _words(loaded, system_id, substance, hazard, display)
     sections = []
     for section in card.sections:
@@ -130,12 +147,24 @@ def _meaning(card: _Card, positions: Positions) -> list[Problem]:
             path = ("sections", i, "lines", j)
             for tag in line.for_:
                 if tag not in TAGS:
-                    problems.append(positions.problem(path, f"{tag!r} is no class of refrigerant or room known here",
-                                                      allowed=", ".join(TAGS), nearest=nearest(tag, TAGS)))  # fmt: skip
+                    problems.append(
+                        positions.problem(
+                            path,
+                            f"{tag!r} is no class of refrigerant or room known here",
+                            allowed=", ".join(TAGS),
+                            nearest=nearest(tag, TAGS),
+                        )
+                    )
             for word in _placeholders(line.text):
                 if word not in WORDS:
-                    problems.append(positions.problem(path, f"{{{word}}} is no word that can be filled in",
-                                                      allowed=", ".join(WORDS), nearest=nearest(word, WORDS)))  # fmt: skip
+                    problems.append(
+                        positions.problem(
+                            path,
+                            f"{{{word}}} is no word that can be filled in",
+                            allowed=", ".join(WORDS),
+                            nearest=nearest(word, WORDS),
+                        )
+                    )
     return problems
 
 
@@ -156,7 +185,7 @@ def _fill(text: str, words: Mapping[str, str]) -> str:
     return "".join(parts).strip()
 
 
-def _card_tags(loaded: LoadedPlant, system: System, hazard: Hazards) -> set[str]:
+def _card_tags(system: System, hazard: Hazards) -> set[str]:
     tags = set(hazard.tags)
     for word in ("flammable", "toxic", "carbon_dioxide"):
         if word not in tags:
@@ -168,7 +197,7 @@ def _card_tags(loaded: LoadedPlant, system: System, hazard: Hazards) -> set[str]
 
 def _words(
     loaded: LoadedPlant, system_id: str, substance: Substance, hazard: Hazards, display: Display
-) -> dict[str, str]:  # fmt: skip
+) -> dict[str, str]:
     from commission.quantities import Kind
 
     system = loaded.system(system_id)

@@ -6,10 +6,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 from commission.quantities import Explained, Input, Kind
-from commission.safety.charge_en378 import Situation, en378_limits
+from commission.safety.charge_en378 import en378_limits
 from commission.safety.charge_others import ashrae15_limit, commercial_limit, heat_pump_limit
-from commission.safety.limits import ChargeLimit
-from commission.safety.pressures import place
+from commission.safety.limits import ChargeLimit, Situation
+from commission.safety.stamped import place
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -63,16 +63,23 @@ def reachable_spaces(system: System) -> dict[str, tuple[str, ...]]:
 
 def _space(
     loaded: LoadedPlant, system_id: str, substance: Substance, space_id: str, holds: tuple[str, ...]
-) -> SpaceCharge:  # fmt: skip
+) -> SpaceCharge:
     system = loaded.system(system_id)
     space = loaded.plant.spaces[space_id]
     name = space.name or space_id
     if space.outdoors:
-        return SpaceCharge(space_id, name, holds, None, (), None, system.charge, None, None, ADVICE, _outdoors(substance))
+        return SpaceCharge(
+            space_id, name, holds, None, (), None, system.charge, None, None, ADVICE, _outdoors(substance)
+        )
     inputs = _inputs(loaded, system_id, space_id, space)
     volume = space.floor_area * space.height if space.floor_area is not None and space.height is not None else None
     situation = _situation(loaded, system, space, substance, volume, inputs)
-    limits = (*en378_limits(situation), ashrae15_limit(situation), commercial_limit(situation), heat_pump_limit(situation))
+    limits = (
+        *en378_limits(situation),
+        ashrae15_limit(situation),
+        commercial_limit(situation),
+        heat_pump_limit(situation),
+    )
     valid = [limit for limit in limits if limit.value is not None]
     lowest = min(valid, key=lambda limit: limit.value.value if limit.value else 0.0, default=None)
     over = None
@@ -98,8 +105,13 @@ def _inputs(loaded: LoadedPlant, system_id: str, space_id: str, space: Space) ->
 
 
 def _situation(
-    loaded: LoadedPlant, system: System, space: Space, substance: Substance, volume: float | None, inputs: tuple[Input, ...]
-) -> Situation:  # fmt: skip
+    loaded: LoadedPlant,
+    system: System,
+    space: Space,
+    substance: Substance,
+    volume: float | None,
+    inputs: tuple[Input, ...],
+) -> Situation:
     unit = loaded.plant.spaces.get(system.spaces.condensing_unit or "")
     return Situation(
         substance=substance,
@@ -123,7 +135,11 @@ def _outdoors(substance: Substance) -> tuple[str, ...]:
         "outdoors: no limit by room size; keep the supplier's protective zone free of ignition sources, drains, light "
         "wells, windows, doors and air intakes"
     )
-    return (zone, "the gas is heavier than air: no opening to a cellar or pit inside the zone") if substance.heavy else (zone,)
+    return (
+        (zone, "the gas is heavier than air: no opening to a cellar or pit inside the zone")
+        if substance.heavy
+        else (zone,)
+    )
 
 
 def smallest_space(spaces: tuple[SpaceCharge, ...]) -> SpaceCharge | None:
@@ -138,4 +154,12 @@ def lowest_limit(spaces: tuple[SpaceCharge, ...]) -> tuple[SpaceCharge, ChargeLi
     return min(found, key=lambda pair: pair[1].value.value if pair[1].value else 0.0, default=None)
 
 
-__all__ = ["ADVICE", "ChargeLimit", "SpaceCharge", "charge_limits", "lowest_limit", "reachable_spaces", "smallest_space"]
+__all__ = [
+    "ADVICE",
+    "ChargeLimit",
+    "SpaceCharge",
+    "charge_limits",
+    "lowest_limit",
+    "reachable_spaces",
+    "smallest_space",
+]

@@ -29,11 +29,15 @@ def _toxicity(case: Situation) -> ChargeLimit:
     edition = "2016, table C.1"
     rule = f"toxicity, access {case.access}, location {case.location}"
     if case.location in ("III", "IV"):
-        return not_applicable(DOCUMENT, edition, rule, "M", "no toxicity limit with all parts outdoors or in a machinery room")
+        return not_applicable(
+            DOCUMENT, edition, rule, "M", "no toxicity limit with all parts outdoors or in a machinery room"
+        )
     if case.substance.toxicity == "B" and case.access != "a":
         return _class_b(case, edition, rule)
     if case.substance.toxicity == "A" and case.access != "a" and not case.below_ground:
-        reason = "no toxicity limit for class A above ground where the public has no access (not so on upper floors without exits)"
+        reason = (
+            "no toxicity limit for class A above ground without public access (not so upstairs without exits)"
+        )
         return not_applicable(DOCUMENT, edition, rule, "M", reason)
     known = _toxicity_limit(case)
     if known is None:
@@ -74,11 +78,15 @@ def _flammability(case: Situation) -> ChargeLimit:
     by_room = _comfort(case, edition, rule) if case.comfort else _by_share(case, edition, rule)
     if by_room.value is None or not case.sealed:
         return by_room
-    free = max(fact("sealed_free_charge").value, flammable_cap(substance.lfl.value, fact("m1_volume").value, _factor(case)))
+    free = max(
+        fact("sealed_free_charge").value, flammable_cap(substance.lfl.value, fact("m1_volume").value, _factor(case))
+    )
     if free <= by_room.value.value:
         return by_room
     inputs = (known_input("LFL", substance.lfl), fact_as_input(fact("m1_volume")))
-    return limit(DOCUMENT, edition, f"{rule}, sealed: m1", (by_room.mark, substance.lfl.mark), free, "charge_cap", inputs)
+    return limit(
+        DOCUMENT, edition, f"{rule}, sealed: m1", (by_room.mark, substance.lfl.mark), free, "charge_cap", inputs
+    )
 
 
 def _factor(case: Situation) -> float:
@@ -111,11 +119,19 @@ def _comfort(case: Situation, edition: str, rule: str) -> ChargeLimit:
 
 def _capped(
     case: Situation, edition: str, rule: str, kilograms: float, inputs: tuple[Input, ...], marks: tuple[str, ...]
-) -> ChargeLimit:  # fmt: skip
+) -> ChargeLimit:
     name, cap = _cap(case)
     if kilograms <= cap:
         return limit(DOCUMENT, edition, rule, marks, kilograms, "charge_by_concentration", inputs)
-    return limit(DOCUMENT, edition, f"{rule}, but not over the cap", (*marks, name.mark), cap, "charge_cap", (*inputs, fact_as_input(name)))
+    return limit(
+        DOCUMENT,
+        edition,
+        f"{rule}, but not over the cap",
+        (*marks, name.mark),
+        cap,
+        "charge_cap",
+        (*inputs, fact_as_input(name)),
+    )
 
 
 def _cap(case: Situation) -> tuple[Fact, float]:
@@ -145,11 +161,20 @@ def _practical(case: Situation) -> ChargeLimit:
     if case.substance.toxicity == "B" and case.access != "a":
         return not_applicable(document, edition, rule, "V1", "class B by kilograms where the public has no access")
     if not case.substance.flammable and case.access != "a" and not case.below_ground:
-        return not_applicable(document, edition, rule, "V1", "no limit for class A1 above ground where the public has no access")
+        return not_applicable(
+            document, edition, rule, "V1", "no limit for class A1 above ground where the public has no access"
+        )
     kilograms = dispersal_charge(known.value, case.volume)
     inputs = (*case.inputs, _volume_input(case), known_input("practical limit", known))
     cap = fact("class3_b_occupied_rsif")
     if case.substance.flammability == "3" and case.access != "c" and kilograms > cap.value:
-        return limit(document, edition, f"{rule}, but not over the cap", (cap.mark, known.mark), cap.value, "charge_cap",
-                     (*inputs, fact_as_input(cap)))  # fmt: skip
+        return limit(
+            document,
+            edition,
+            f"{rule}, but not over the cap",
+            (cap.mark, known.mark),
+            cap.value,
+            "charge_cap",
+            (*inputs, fact_as_input(cap)),
+        )
     return limit(document, edition, rule, ("V1", known.mark), kilograms, "charge_by_concentration", inputs)

@@ -19,8 +19,11 @@ def ashrae15_limit(case: Situation) -> ChargeLimit:
     if case.substance.flammability == "3":
         rule += "; class 3 needs the approval of the authority besides"
     kilograms = dispersal_charge(case.substance.rcl.value, case.volume)
-    inputs = (*case.inputs, Input("room volume", case.volume, Kind.VOLUME, "floor area times height"),
-              known_input("RCL", case.substance.rcl))  # fmt: skip
+    inputs = (
+        *case.inputs,
+        Input("room volume", case.volume, Kind.VOLUME, "floor area times height"),
+        known_input("RCL", case.substance.rcl),
+    )
     return limit(document, edition, rule, ("M", case.substance.rcl.mark), kilograms, "charge_by_concentration", inputs)
 
 
@@ -31,13 +34,23 @@ def commercial_limit(case: Situation) -> ChargeLimit:
     if not case.commercial:
         return not_applicable(document, edition, rule, volume.mark, "not a commercial refrigerating appliance")
     if not case.sealed:
-        return not_applicable(document, edition, rule, volume.mark, "for factory-sealed appliances; this one is piped on site")
+        return not_applicable(
+            document, edition, rule, volume.mark, "for factory-sealed appliances; this one is piped on site"
+        )
     if not case.substance.flammable or case.substance.lfl is None:
         return not_applicable(document, edition, rule, volume.mark, "the refrigerant does not burn (class 1)")
     if case.substance.flammability == "3":
         kilograms = flammable_cap(case.substance.lfl.value, volume.value)
         inputs = (known_input("LFL", case.substance.lfl), fact_as_input(volume))
-        return limit(document, edition, f"{rule}: 13 m³ x LFL", (volume.mark, case.substance.lfl.mark), kilograms, "charge_cap", inputs)
+        return limit(
+            document,
+            edition,
+            f"{rule}: 13 m³ x LFL",
+            (volume.mark, case.substance.lfl.mark),
+            kilograms,
+            "charge_cap",
+            inputs,
+        )
     return limit(document, edition, rule, (mass.mark,), mass.value, "charge_cap", (fact_as_input(mass),))
 
 
@@ -59,5 +72,13 @@ def heat_pump_limit(case: Situation) -> ChargeLimit:
     lfl = substance.lfl.value
     by_room = comfort_charge(lfl, height.value, case.area)
     kilograms = min(max(by_room, flammable_cap(lfl, m1.value)), flammable_cap(lfl, m2.value))
-    inputs = (*case.inputs, known_input("LFL", substance.lfl), fact_as_input(height), fact_as_input(m1), fact_as_input(m2))
-    return limit(document, edition, rule, (m1.mark, m2.mark, substance.lfl.mark), kilograms, "charge_by_floor_area", inputs)
+    inputs = (
+        *case.inputs,
+        known_input("LFL", substance.lfl),
+        fact_as_input(height),
+        fact_as_input(m1),
+        fact_as_input(m2),
+    )
+    return limit(
+        document, edition, rule, (m1.mark, m2.mark, substance.lfl.mark), kilograms, "charge_by_floor_area", inputs
+    )

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 from commission.quantities import Input, Kind
 from commission.safety.facts import fact
 from commission.safety.figure import Collector, fact_input
-from commission.safety.pressures import place
+from commission.safety.stamped import place
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -35,8 +35,13 @@ def evacuation_figures(loaded: LoadedPlant, system_id: str, substance: Substance
         inputs.append(Input("coldest evaporation stated", coldest, Kind.TEMPERATURE, "description"))
     out.add("evacuation_target", target.value, "safety_rule_figure", tuple(inputs), target)
     _hold(loaded, system_id, substance, ammonia, out)
-    out.add("rise_test_hold", fact("rise_test_hold").value, "safety_rule_figure",
-            (fact_input(fact("rise_test_hold")),), fact("rise_test_hold"))  # fmt: skip
+    out.add(
+        "rise_test_hold",
+        fact("rise_test_hold").value,
+        "safety_rule_figure",
+        (fact_input(fact("rise_test_hold")),),
+        fact("rise_test_hold"),
+    )
     if ammonia:
         out.refuse("an ammonia system is judged by the rule's limit at the end of the hold", "rise_test_limit")
     else:

@@ -1,4 +1,4 @@
-"""The figures of standards and law that this room works with: value, document, edition and mark, read from YAML once."""
+"""The figures of standards and law that this room works with: value, document, edition, mark; read from YAML once."""
 
 from __future__ import annotations
 
@@ -94,9 +94,15 @@ def facts() -> Mapping[str, Fact]:
         if entry["mark"] not in MARKS:
             raise ValueError(f"facts.yaml: {key}: unknown mark {entry['mark']!r}")
         table[key] = Fact(
-            key, read_value(text, kind), kind, str(entry["document"]), str(entry["edition"]), str(entry["mark"]),
-            str(entry["says"]), gauge,
-        )  # fmt: skip
+            key,
+            read_value(text, kind),
+            kind,
+            str(entry["document"]),
+            str(entry["edition"]),
+            str(entry["mark"]),
+            str(entry["says"]),
+            gauge,
+        )
     return MappingProxyType(table)
 
 

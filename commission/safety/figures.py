@@ -5,14 +5,16 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from commission.quantities import Explained, Input, Kind
+from commission.safety.ambient import design_pressures, standstill
 from commission.safety.charge import SpaceCharge, charge_limits, lowest_limit, smallest_space
 from commission.safety.evacuation import evacuation_figures
 from commission.safety.facts import Fact, fact
 from commission.safety.figure import TITLES, Collector, Figure, Figures, fact_input
 from commission.safety.formulas import dispersal_charge
 from commission.safety.leaks import leak_duty
-from commission.safety.pressures import design_pressures, limit_devices, pressure_test_figures, standstill
+from commission.safety.limit_devices import limit_devices
 from commission.safety.register import substance_of
+from commission.safety.strength import pressure_test_figures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -81,8 +83,10 @@ def _concentration(space: SpaceCharge | None, substance: Substance, out: Collect
     note = f"{space.name}; a leak is never evenly mixed: near the leak and the floor it is denser"
     out.add("leak_concentration", spread.value, spread.method, spread.inputs, rule, note=note)
     if lfl is not None:
-        inputs = (Input("concentration", spread.value, Kind.DENSITY, "calculated"),
-                  Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"))  # fmt: skip
+        inputs = (
+            Input("concentration", spread.value, Kind.DENSITY, "calculated"),
+            Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"),
+        )
         out.add("leak_share_of_lfl", spread.value / lfl.value, "leak_share", inputs, rule, mark=lfl.mark, note=note)
 
 
@@ -95,11 +99,13 @@ def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Colle
         out.refuse(why, "co2_equivalent")
     else:
         gwp = substance.gwp
-        inputs = (Input("charge", system.charge, Kind.MASS, str(loaded.where(f"systems.{system_id}.charge"))),
-                  Input("GWP", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"))  # fmt: skip
+        inputs = (
+            Input("charge", system.charge, Kind.MASS, str(loaded.where(f"systems.{system_id}.charge"))),
+            Input("GWP", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"),
+        )
         out.add("co2_equivalent", system.charge * gwp.value, "co2_equivalent", inputs, rule, mark=gwp.mark)
     if duty.months is None:
         out.refuse(duty.reason, "leak_check_months")
     else:
-        inputs = () if duty.measure is None else duty.measure.inputs
-        out.add("leak_check_months", float(duty.months), "leak_check_interval", inputs, rule)
+        measured = () if duty.measure is None else duty.measure.inputs
+        out.add("leak_check_months", float(duty.months), "leak_check_interval", measured, rule)

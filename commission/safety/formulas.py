@@ -8,7 +8,7 @@ GAS_CONSTANT = 8.314462618  # J/(mol K), exact by the 2019 SI
 
 
 def nitrogen_pressure(pressure: float, temperature: float, later_temperature: float) -> float:
-    """The pressure that dry nitrogen shut in at `pressure` (Pa absolute) and `temperature` shows at another temperature.
+    """The pressure that dry nitrogen, shut in at `pressure` and `temperature`, shows at another temperature.
 
     Constant volume; virial equation p = ρRT(1 + Bρ) with B of nitrogen in cm³/mol = −4 − 56x − 12x², x = 298.15/T − 1
     (CRC Handbook, virial coefficients of selected gases; from memory, within 0.02 % of the equation of state of Span et
@@ -37,7 +37,7 @@ def _nitrogen_b(temperature: float) -> float:
 def pressure_steps(pre_test: float, test: float, first_share: float = 0.5, step: float = 0.1) -> tuple[float, ...]:
     """Gauge pressures of a site pressure test in Pa: pre-test, first share of the test pressure, then equal steps.
 
-    RSIF IF-09 1.3.1: pre-test at 1.5 bar, then 50 %, then steps of about 10 %. A step that lies below the one before it is left out.
+    RSIF IF-09 1.3.1: pre-test at 1.5 bar, then 50 %, then steps of about 10 %. A step below the one before is left out.
     """
     count = round((1 - first_share) / step)
     shares = [first_share + (1 - first_share) * i / count for i in range(count + 1)]
@@ -60,17 +60,17 @@ def flammable_cap(lfl: float, volume: float, factor: float = 1.0) -> float:
 
 def comfort_charge(lfl: float, height: float, area: float) -> float:
     """Largest charge in kg for human comfort: 2.5·LFL^(5/4)·h0·√A (EN 378-1 C.2.1), LFL kg/m³, h0 m, A m²."""
-    return 2.5 * lfl**1.25 * height * math.sqrt(area)
+    return float(2.5 * lfl**1.25 * height * math.sqrt(area))
 
 
 def comfort_area(charge: float, lfl: float, height: float) -> float:
     """Smallest floor area in m² for a charge in kg: (m / (2.5·LFL^(5/4)·h0))² (EN 378-1 C.2.1)."""
-    return (charge / (2.5 * lfl**1.25 * height)) ** 2
+    return float((charge / (2.5 * lfl**1.25 * height)) ** 2)
 
 
 def emergency_ventilation_en378(charge: float) -> float:
     """Emergency ventilation of a machinery room in m³/s: 0.014·m^(2/3), m in kg (EN 378-3:2016, 5.13)."""
-    return 0.014 * charge ** (2 / 3)
+    return float(0.014 * charge ** (2 / 3))
 
 
 def emergency_ventilation_ashrae15(charge: float) -> float:

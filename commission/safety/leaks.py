@@ -51,7 +51,9 @@ def _eu(law: Mapping[str, Any], substance: Substance, charge: float | None, seal
     document, edition = str(law["document"]), str(law["edition"])
     parts = set(substance.components)
     if parts & set(law["ozone"]):
-        reason = "an ozone-depleting substance: Regulation (EU) 2024/590 applies instead; ask for its leak-check interval"
+        reason = (
+            "an ozone-depleting substance: Regulation (EU) 2024/590 applies instead; ask for its leak-check interval"
+        )
         return LeakDuty(EU, None, None, None, reason, "Regulation (EU) 2024/590", "", "M")
     group = "annex_i" if parts & set(law["annex_i"]["components"]) else "annex_ii"
     if not parts & set(law[group]["components"]):
@@ -73,8 +75,8 @@ def _measure(group: str, substance: Substance, charge: float) -> Explained | Non
     if substance.gwp is None:
         return None
     gwp = substance.gwp
-    inputs = (*inputs, Input("GWP by EU 2024/573", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"))
-    return Explained("co2_equivalent", co2_equivalent(charge, gwp.value), None, "co2_equivalent", inputs)
+    both = (*inputs, Input("GWP by EU 2024/573", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"))
+    return Explained("co2_equivalent", co2_equivalent(charge, gwp.value), None, "co2_equivalent", both)
 
 
 def _eu_row(group: Mapping[str, Any], measure: Explained, sealed: bool, document: str, edition: str) -> LeakDuty:
@@ -100,7 +102,9 @@ def _us(law: Mapping[str, Any], substance: Substance, charge: float | None, duty
     if charge is None:
         return LeakDuty(US, None, None, None, "the charge is not stated", document, edition, mark)
     edge = read_value(str(rule["full_charge_from"]["value"]), Kind.MASS)
-    measure = Explained("charge", charge, None, "safety_rule_figure", (Input("charge", charge, Kind.MASS, "description"),))
+    measure = Explained(
+        "charge", charge, None, "safety_rule_figure", (Input("charge", charge, Kind.MASS, "description"),)
+    )
     if not ozone:
         if not substance.fluorinated:
             reason = f"{substance.name} holds no HFC or substitute that this law counts"
@@ -110,10 +114,21 @@ def _us(law: Mapping[str, Any], substance: Substance, charge: float | None, duty
         if substance.gwp.value <= read_value(str(rule["gwp_above"]["value"]), Kind.NUMBER):
             return LeakDuty(US, False, None, None, "GWP not above 53", document, edition, mark, measure)
     if charge < edge:
-        return LeakDuty(US, False, None, None, f"full charge below {rule['full_charge_from']['value']}", document, edition, mark, measure)
+        return LeakDuty(
+            US,
+            False,
+            None,
+            None,
+            f"full charge below {rule['full_charge_from']['value']}",
+            document,
+            edition,
+            mark,
+            measure,
+        )
     rate = law["leak_rates"][duty]
     reason = (
-        f"leak rate at every addition; repair within 30 days above {rate['value']} of the full charge a year ({rate['says']}); "
+        f"leak rate at every addition; repair within 30 days above {rate['value']} of the full charge a year "
+        f"({rate['says']}); "
         "no fixed interval before a leak is found"
     )
     return LeakDuty(US, True, None, None, reason, document, edition, mark, measure)

@@ -1,4 +1,4 @@
-"""Order of the pressures that protect a circuit: expected, limit device, relief, allowable; and what is out of order."""
+"""Order of the pressures that protect a circuit: expected, limit, relief, allowable; and what is out of order."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Literal
 from commission.quantities import Explained, Input, Kind
 from commission.safety.facts import fact
 from commission.safety.figure import Figures
-from commission.safety.pressures import stamped_pressures
+from commission.safety.stamped import stamped_pressures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -44,7 +44,7 @@ class LimitOrder:
 
 
 def limit_order(loaded: LoadedPlant, system_id: str, figures: Figures) -> LimitOrder:
-    """The ladder of one system and its faults (EN 378-2:2016 table 3; the margin to the hottest day is common practice)."""
+    """The ladder of one system and its faults (EN 378-2:2016 table 3; margin to the hottest day: common practice)."""
     system = loaded.system(system_id)
     base = f"systems.{system_id}"
     steps: list[PressureStep] = []
@@ -77,25 +77,56 @@ def _limit_problems(loaded: LoadedPlant, system_id: str, figures: Figures) -> tu
         setting = loaded.absolute(controls.high_pressure_limit)
         shown = _stated("high-pressure limit", setting, str(loaded.where(path)))
         if highest is not None and setting > highest.value * (1 + 1e-9):
-            found.append(OutOfOrder("the high-pressure limit is set above what the nameplate allows", "error", path,
-                                    (shown, highest.explained), highest.source, "set it lower, or prove another nameplate"))  # fmt: skip
+            found.append(
+                OutOfOrder(
+                    "the high-pressure limit is set above what the nameplate allows",
+                    "error",
+                    path,
+                    (shown, highest.explained),
+                    highest.source,
+                    "set it lower, or prove another nameplate",
+                )
+            )
         hottest = figures.get("hottest_discharge_pressure")
         if hottest is not None and setting <= hottest.value:
-            found.append(OutOfOrder("the plant will trip on the hottest day: expected discharge pressure reaches the limit",
-                                    "warning", path, (shown, hottest.explained), "design model",
-                                    "check condenser and settings before raising anything"))  # fmt: skip
+            found.append(
+                OutOfOrder(
+                    "the plant will trip on the hottest day: expected discharge pressure reaches the limit",
+                    "warning",
+                    path,
+                    (shown, hottest.explained),
+                    "design model",
+                    "check condenser and settings before raising anything",
+                )
+            )
     if receiver is not None and receiver.relief_valve is not None:
         relief = loaded.absolute(receiver.relief_valve)
         path = f"systems.{system_id}.receiver.relief_valve"
         shown = _stated("relief valve", relief, str(loaded.where(path)))
         top = figures.get("relief_highest")
         if top is not None and relief > top.value * (1 + 1e-9):
-            found.append(OutOfOrder("the relief valve opens above the allowable pressure", "error", path,
-                                    (shown, top.explained), top.source, "fit a relief valve for the stamped pressure"))  # fmt: skip
+            found.append(
+                OutOfOrder(
+                    "the relief valve opens above the allowable pressure",
+                    "error",
+                    path,
+                    (shown, top.explained),
+                    top.source,
+                    "fit a relief valve for the stamped pressure",
+                )
+            )
         if controls.high_pressure_limit is not None and loaded.absolute(controls.high_pressure_limit) >= relief:
             limit = _stated("high-pressure limit", loaded.absolute(controls.high_pressure_limit), "description")
-            found.append(OutOfOrder("the relief valve opens before the high-pressure limit stops the compressor", "error",
-                                    path, (shown, limit), "EN 378-2, 2016, table 3", "set the limit below the relief valve"))  # fmt: skip
+            found.append(
+                OutOfOrder(
+                    "the relief valve opens before the high-pressure limit stops the compressor",
+                    "error",
+                    path,
+                    (shown, limit),
+                    "EN 378-2, 2016, table 3",
+                    "set the limit below the relief valve",
+                )
+            )
     return tuple(found)
 
 
@@ -106,11 +137,13 @@ def _standstill_problems(loaded: LoadedPlant, system_id: str, figures: Figures) 
     source = fact("relief_setting_ratio").source
     return tuple(
         OutOfOrder(
-            f"at standstill on the hottest day the {stamped.side} side is above its allowable pressure", "error",
+            f"at standstill on the hottest day the {stamped.side} side is above its allowable pressure",
+            "error",
             f"systems.{system_id}.nameplate.allowable_pressure_{stamped.side}",
             (still.explained, _stated(f"allowable pressure, {stamped.side} side", stamped.absolute, stamped.origin)),
-            source, "read the nameplate again; if it stands, this refrigerant cannot be used in it",
+            source,
+            "read the nameplate again; if it stands, this refrigerant cannot be used in it",
         )
         for stamped in stamped_pressures(loaded, system_id)
         if still.value > stamped.absolute
-    )  # fmt: skip
+    )

@@ -50,8 +50,14 @@ def fact_as_input(rule: Fact) -> Input:
 
 
 def limit(
-    document: str, edition: str, rule: str, marks: tuple[str, ...], kilograms: float, method: str, inputs: tuple[Input, ...]
-) -> ChargeLimit:  # fmt: skip
+    document: str,
+    edition: str,
+    rule: str,
+    marks: tuple[str, ...],
+    kilograms: float,
+    method: str,
+    inputs: tuple[Input, ...],
+) -> ChargeLimit:
     """A limit in kg."""
     explained = Explained("room_charge_limit", kilograms, None, method, inputs)
     return ChargeLimit(document, edition, rule, weaker(*marks), explained)

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
-    from commission.properties import Refrigerant
+    pass
 
 AIR_MOLAR_MASS = 0.02896
 """kg/mol of dry air: a heavier gas lies on the floor."""

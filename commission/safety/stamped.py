@@ -1,0 +1,61 @@
+"""Allowable pressures as stamped, the hottest ambient as stated, and where each is written."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.quantities import Input, Kind
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+
+
+@dataclass(frozen=True, slots=True)
+class Stamped:
+    """An allowable pressure as stamped: Pa absolute, gauge at the site, and its place in the description."""
+
+    absolute: float
+    gauge: float
+    side: str
+    origin: str
+
+    def as_input(self) -> Input:
+        """The stamped pressure as an input of a calculation."""
+        return Input(f"allowable pressure of the {self.side} side", self.absolute, Kind.PRESSURE, self.origin)
+
+
+def place(loaded: LoadedPlant, path: str) -> str:
+    """Where a key is written, as file, line and column."""
+    return str(loaded.where(path))
+
+
+def hottest_ambient(loaded: LoadedPlant, system_id: str) -> tuple[float, str] | None:
+    """The hottest air stated for a system in K, with its place: design weather, or a warmer rated or design point."""
+    found: list[tuple[float, str]] = []
+    summer = loaded.plant.plant.climate.summer_dry_bulb
+    if summer is not None:
+        found.append((summer, place(loaded, "plant.climate.summer_dry_bulb")))
+    system = loaded.system(system_id)
+    if system.heat_sink.medium == "air" and system.duty not in ("space_heating", "water_heating"):
+        inlets = [p.heat_sink_inlet_temperature for p in system.rated_points]
+        if system.condensing_unit is not None:
+            inlets += [p.heat_sink_inlet_temperature for p in system.condensing_unit.rated_points]
+        origin = f"rated point, {place(loaded, f'systems.{system_id}')}"
+        found += [(inlet, origin) for inlet in inlets if inlet is not None]
+        if system.design is not None and system.design.heat_sink_inlet_temperature is not None:
+            origin = place(loaded, f"systems.{system_id}.design.heat_sink_inlet_temperature")
+            found.append((system.design.heat_sink_inlet_temperature, origin))
+    return max(found, default=None)
+
+
+def stamped_pressures(loaded: LoadedPlant, system_id: str) -> tuple[Stamped, ...]:
+    """The allowable pressures that the nameplate states, low side first."""
+    plate = loaded.system(system_id).nameplate
+    found = []
+    for side, value in (("low", plate.allowable_pressure_low), ("high", plate.allowable_pressure_high)):
+        if value is not None:
+            absolute = loaded.absolute(value)
+            origin = place(loaded, f"systems.{system_id}.nameplate.allowable_pressure_{side}")
+            found.append(Stamped(absolute, absolute - loaded.barometric_pressure, side, origin))
+    return tuple(found)
