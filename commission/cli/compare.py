@@ -19,14 +19,14 @@ def command(plant: Path, record: Path, as_json: bool) -> None:
 
     Leaves with 1 where a guarantee is not met, with 0 where it is met, undecided, or where nothing is guaranteed.
     """
-    from commission.cli.judgement import as_data, as_text
+    from commission.cli.judgement import as_text
     from commission.description import load_plant
     from commission.records import judge_record, read_record
 
     loaded = load_plant(plant)
     judgement = judge_record(loaded, read_record(record, loaded))
     if as_json:
-        click.echo(json.dumps(as_data(judgement), indent=2, ensure_ascii=False))
+        click.echo(json.dumps(judgement.as_data(), indent=2, ensure_ascii=False))
     else:
         click.echo(as_text(judgement, loaded))
     if judgement.outcome == "not conforming":

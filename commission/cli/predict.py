@@ -55,7 +55,7 @@ def command(plant: Path, system: str | None, pairs: tuple[str, ...], as_json: bo
     blocks = []
     for name, result in results.items():
         title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
-        blocks.append(_as_text(title, result, display))
+        blocks.append(_as_text(title, result, display, given=bool(pairs)))
     click.echo("\n\n".join(blocks))
 
 
@@ -103,22 +103,24 @@ def _as_data(result: Prediction | str) -> dict[str, Any]:
     return {"conditions": conditions, "expected": expected, "not_calculated": dict(result.not_calculated)}
 
 
-def _as_text(title: str, result: Prediction | str, display: Display) -> str:
+def _as_text(title: str, result: Prediction | str, display: Display, *, given: bool) -> str:
     from commission.quantities import NOMENCLATURE
 
     lines = [title]
     if isinstance(result, str):
         return f"{title}\n  not calculated: because {result}"
     for key, value in result.conditions.items():
-        taken = "  (rated, not given)" if key in result.filled else ""
+        taken = "  (rated, not given)" if given and key in result.filled else ""
         lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, value)}{taken}")
     lines.append(f"  regime: {result.regime}")
     rows = [("", "expected", "± (k = 2)")]
     for key, explained in result.expected.items():
         quantity = NOMENCLATURE[key]
         u = explained.uncertainty
-        spread = "not stated" if u is None else f"{display.spread(COVERAGE * u, quantity.kind)} " + display.spread_unit(
-            quantity.kind
+        spread = (
+            "not stated"
+            if u is None
+            else f"{display.spread(COVERAGE * u, quantity.kind)} " + display.spread_unit(quantity.kind)
         )
         rows.append((quantity.label, display.of(key, explained.value), spread.strip()))
     widths = [max(len(row[i]) for row in rows) for i in range(3)]

@@ -25,7 +25,7 @@ def command(plant: Path, visit: dt.datetime | None) -> None:
     loaded = load_plant(plant)
     findings = review(loaded, visit=visit.date() if visit else None)
     for finding in findings:
-        click.echo(finding.as_text())
+        click.echo(str(finding))
         click.echo()
     counts = {severity: sum(f.severity == severity for f in findings) for severity in ("error", "warning", "note")}
     words = [f"{n} {severity}{'' if n == 1 else 's'}" for severity, n in counts.items() if n]

@@ -1,7 +1,7 @@
 """`build --serve`: the manual in a browser on this computer, rebuilt when the plant folder changes.
 
-Served pages go to a folder of their own: their security policy is relaxed for the reload script, which the manual that is
-handed over must not be.
+Served pages go to a folder of their own: their security policy is relaxed for the reload script, which that of the
+manual handed over must never be.
 """
 
 from __future__ import annotations

@@ -46,7 +46,9 @@ def test_a_warmer_day_moves_the_readings_as_the_trade_knows(
     commission: Run, example_folder: Path, rated: dict[str, Any]
 ) -> None:
     """Warmer air on the condenser: higher discharge pressure and power, less capacity (common practice, no source)."""
-    done = commission("predict", example_folder, "--system", "cold-room", "--at", "heat_sink_inlet_temperature=38 °C", "--json")
+    done = commission(
+        "predict", example_folder, "--system", "cold-room", "--at", "heat_sink_inlet_temperature=38 °C", "--json"
+    )
     assert done.returncode == 0, done.stderr
     warm = json.loads(done.stdout)["systems"]["cold-room"]["expected"]
     cool = rated["systems"]["cold-room"]["expected"]
@@ -59,7 +61,9 @@ def test_the_same_temperature_in_fahrenheit_gives_the_same_answer(
     commission: Run, example_folder: Path, rated: dict[str, Any]
 ) -> None:
     """89.6 °F is 32 °C, so nothing changes."""
-    done = commission("predict", example_folder, "--system", "cold-room", "--at", "heat_sink_inlet_temperature=89.6 °F", "--json")
+    done = commission(
+        "predict", example_folder, "--system", "cold-room", "--at", "heat_sink_inlet_temperature=89.6 °F", "--json"
+    )
     again = json.loads(done.stdout)["systems"]["cold-room"]["expected"]
     for key, entry in rated["systems"]["cold-room"]["expected"].items():
         assert again[key]["value"] == pytest.approx(entry["value"], rel=1e-6, abs=1e-6)
@@ -98,7 +102,14 @@ def test_wrong_use_leaves_with_two_and_says_what_to_write(
 def test_all_wrong_conditions_are_told_in_one_run(commission: Run, example_folder: Path) -> None:
     """Two slips give two messages."""
     done = commission(
-        "predict", example_folder, "--system", "cold-room", "--at", "heat_sink_inlet_temperature=31", "--at", "nonsense=1 K"
+        "predict",
+        example_folder,
+        "--system",
+        "cold-room",
+        "--at",
+        "heat_sink_inlet_temperature=31",
+        "--at",
+        "nonsense=1 K",
     )
     assert "write its unit" in done.stderr
     assert "nonsense" in done.stderr

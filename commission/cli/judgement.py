@@ -1,0 +1,73 @@
+"""A judgement as text: what was read, what was expected, what it means, in the order a person asks."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import TYPE_CHECKING
+
+from commission.quantities import NOMENCLATURE, Display
+from commission.records import guarantee_sentence
+
+if TYPE_CHECKING:
+    from commission.acceptance import Judgement
+    from commission.description import LoadedPlant
+
+
+def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
+    """The judgement for a terminal. Uncertainties are expanded, 95 %."""
+    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    name = loaded.system(judgement.system).name or judgement.system
+    lines = [f"{name} ({judgement.system}), {judgement.mode}"]
+    for key, measured in judgement.conditions.items():
+        lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, measured.value)}")
+    lines += ["", *_table(judgement, display)]
+    lines += _listed("cannot be", (i.text for i in judgement.impossible))
+    lines += _listed("steadiness", (s.text for s in judgement.steadiness if s.steady is not True))
+    lines += _listed(
+        "route refused", (f"{NOMENCLATURE[r.key].label} by {r.route}: {r.reason}" for r in judgement.refusals)
+    )
+    lines += _listed("not judged", (f"{_label(key)}: {reason}" for key, reason in judgement.not_judged.items()))
+    lines += _listed("mind", judgement.warnings)
+    lines += ["", f"verdict: {_verdict(judgement, display)}"]
+    return "\n".join(lines)
+
+
+def _label(key: str) -> str:
+    return NOMENCLATURE[key].label if key in NOMENCLATURE else key
+
+
+def _table(judgement: Judgement, display: Display) -> list[str]:
+    rows = [("", "read", "expected", "deviation", "± (95 %)", "")]
+    for d in judgement.deviations:
+        kind = NOMENCLATURE[d.key].kind
+        rows.append(
+            (
+                NOMENCLATURE[d.key].label,
+                display.of(d.key, d.reading.value),
+                display.of(d.key, d.expected.value),
+                display.spread(d.deviation, kind),
+                f"{display.spread(d.budget.expanded(), kind)} {display.spread_unit(kind)}".strip(),
+                "significant" if d.significant else "",
+            )
+        )
+    if len(rows) == 1:
+        return ["  no reading has an expected value"]
+    widths = [max(len(row[i]) for row in rows) for i in range(6)]
+    return ["  " + "  ".join(map(_cell, range(6), row, widths)).rstrip() for row in rows]
+
+
+def _cell(column: int, text: str, width: int) -> str:
+    """Words to the left, numbers to the right."""
+    return text.ljust(width) if column in (0, 5) else text.rjust(width)
+
+
+def _listed(head: str, texts: Iterable[str]) -> list[str]:
+    return [f"  {head}: {text}" for text in texts]
+
+
+def _verdict(judgement: Judgement, display: Display) -> str:
+    if judgement.mode == "trim":
+        return "none, this was a trim: deviations only"
+    if not judgement.guarantees:
+        return "none, since the contract guarantees nothing for this system"
+    return "\n         ".join(guarantee_sentence(g, display) for g in judgement.guarantees)
