@@ -24,12 +24,12 @@ def check_answers(
     written: Mapping[str, Answer],
     stage: str,
     items: Mapping[str, Sequence[Item]],
-    attachments: Sequence[str],
+    files: Sequence[str],
 ) -> tuple[dict[str, CheckedAnswer], tuple[str, ...]]:
     """The answers that fit, and the ids of items of `stage` without one; slips are kept by `reader`.
 
     `items` are the items of all stages by stage id: an answer to an item of another stage is allowed, since one
-    visit often settles what an earlier one left.
+    visit often settles what an earlier one left. `files` are those that are filed with the record.
     """
     by_id = {item.id: item for of_stage in items.values() for item in of_stage}
     answers: dict[str, CheckedAnswer] = {}
@@ -40,7 +40,7 @@ def check_answers(
             near = nearest(identity, by_id)
             reader.problem(path, "no item of this system's checklist has this id", nearest=near, at_key=True)
             continue
-        checked = _check(reader, path, item, answer, attachments)
+        checked = _check(reader, path, item, answer, files)
         if checked is not None:
             answers[identity] = checked
     unanswered = tuple(item.id for item in items.get(stage, ()) if item.id not in written)
@@ -48,7 +48,7 @@ def check_answers(
 
 
 def _check(
-    reader: ReadingsReader, path: KeyPath, item: Item, answer: Answer, attachments: Sequence[str]
+    reader: ReadingsReader, path: KeyPath, item: Item, answer: Answer, files: Sequence[str]
 ) -> CheckedAnswer | None:
     at = (*path, "answer") if (*path, "answer") in reader.positions else path
     text = answer.answer.strip()
@@ -62,9 +62,9 @@ def _check(
             return None
         outcome = "done" if text == "yes" else "failed"
     elif item.answer == "file":
-        if text not in attachments:
-            allowed = ", ".join(attachments) or "name the file under attachments as well"
-            near = nearest(text, attachments)
+        if text not in files:
+            allowed = ", ".join(files) or "name the file under attachments as well"
+            near = nearest(text, files)
             reader.problem(at, "this item is answered with a file that is filed with it", allowed=allowed, nearest=near)
             return None
     elif item.answer == "value":
@@ -92,10 +92,10 @@ def kind_of(item: Item) -> Kind | None:
 def _outside(item: Item, value: float | None) -> bool:
     """Whether a setting or test value lies outside what it must be.
 
-    A quantity of the nomenclature is left out: what it should read depends on the condition of the visit and on the
-    instrument, and the judgement of the readings takes both into account.
+    The checklist is read without a prediction here, so bounds of expected readings are not known and decide nothing:
+    they depend on the condition of the visit and on the instrument, which the judgement of the readings takes in.
     """
-    if value is None or item.must_read is None or item.quantity is not None:
+    if value is None or item.must_read is None:
         return False
     low, high = item.must_read.low, item.must_read.high
     slack = 1e-9 * abs(value)

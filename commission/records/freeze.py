@@ -9,8 +9,10 @@ from typing import TYPE_CHECKING, Any
 
 from commission.description import LoadedPlant
 from commission.quantities import NOMENCLATURE, SI_UNIT, Display
+from commission.records.filed import FrozenDeviation
 from commission.records.judge import NamedSheet
 from commission.records.record import Record, SiteReading
+from commission.records.text import plain
 
 if TYPE_CHECKING:
     from commission.acceptance.budget import Budget
@@ -134,6 +136,13 @@ def _deviations(deviations: Iterable[Deviation]) -> dict[str, Any]:
             **_split(d.budget),
         }
         for d in deviations
+    }
+
+
+def frozen_deviations(judgement: Judgement) -> dict[str, FrozenDeviation]:
+    """The deviations of a judgement in the form in which they are filed."""
+    return {
+        key: FrozenDeviation.model_construct(**plain(data)) for key, data in _deviations(judgement.deviations).items()
     }
 
 

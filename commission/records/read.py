@@ -23,7 +23,9 @@ if TYPE_CHECKING:
     from commission.checklists import Item
 
 RECORDS = "records"
-READING_KEYS: tuple[str, ...] = tuple(k for k in NOMENCLATURE if k not in CONDITION_KEYS)
+EITHER: tuple[str, ...] = ("heat_source_outlet_temperature", "heat_sink_outlet_temperature")
+"""A condition where a controller holds it, an answer of the plant where it does not."""
+READING_KEYS: tuple[str, ...] = tuple(k for k in NOMENCLATURE if k not in CONDITION_KEYS or k in EITHER)
 
 
 class RecordError(InputError):
@@ -76,9 +78,7 @@ def check_record(
     conditions = reader.section("conditions", rest, CONDITION_KEYS)
     readings = reader.section("readings", file.readings, READING_KEYS)
     items = _items(loaded, file, reader) if system is not None else {}
-    answers, unanswered = (
-        check_answers(reader, file.answers, file.stage, items, file.attachments) if items else ({}, ())
-    )
+    answers, unanswered = check_answers(reader, file.answers, file.stage, items, _files(file)) if items else ({}, ())
     _sense(file, reader)
     if reader.problems:
         raise RecordError(*bounded(reader.problems))
@@ -122,6 +122,9 @@ def _sense(file: RecordFile, reader: ReadingsReader) -> None:
     for number, update in enumerate(file.item_updates):
         if update.closed and not update.closed_by:
             reader.problem(("item_updates", number), "an item is closed by somebody", allowed="closed_by: ...")
+    for key in file.readings:
+        if key in file.conditions and key in EITHER:
+            reader.problem(("readings", key), "this stands under conditions already; write it once", at_key=True)
     seen: set[str] = set()
     for number, name in enumerate(file.attachments):
         path = ("attachments", number)
@@ -149,3 +152,8 @@ def _warnings(file: RecordFile, readings: Mapping[str, Any], unanswered: tuple[s
     if readings and file.since_start is None:
         found.append("the running time since the last start is not written: nobody can say later that it was steady")
     return found
+
+
+def _files(file: RecordFile) -> tuple[str, ...]:
+    """What an item that asks for a file can be answered with."""
+    return (*file.attachments, *([file.sheet] if file.sheet else []))
