@@ -124,6 +124,7 @@ def explain(
         inputs += stated.get(key, ())
         named = [c for c, v in own.items() if c in fit.used and abs(v) >= NOTICED * uncertainty]
         named.sort(key=lambda c: -abs(own[c]))
+        inputs += [Input(c, fit.values[c], fit.used[c].kind, f"assumption {c}") for c in named]
         table[key] = Explained(key, value, uncertainty, METHOD[key], tuple(inputs), tuple(named))
     return table
 

@@ -148,7 +148,7 @@ def reference(cases: tuple[Case, ...]) -> int:
 
 
 def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
-    """Heat, inlet temperatures and flows at the reference point; a flow that nobody states follows from an assumed change."""
+    """Heat, inlet temperatures and flows at the reference point; unstated flows follow from an assumed change."""
     given = {d.of: d.value for d in case.data if d.assumption is None}
     power = given.get("power_input", 0.0)
     if "cooling_capacity" in given:

@@ -1,0 +1,42 @@
+"""Honest uncertainty: each rated point predicted from the others."""
+
+from __future__ import annotations
+
+import math
+
+import pytest
+
+from commission.description import LoadedPlant
+from commission.prediction import fitting, rated
+from commission.prediction.facts import facts_of
+
+
+def _misses(example: LoadedPlant, monkeypatch: pytest.MonkeyPatch) -> list[tuple[str, float, float]]:
+    """(quantity, miss in its own standard uncertainty, relative miss) of every left-out value."""
+    facts = facts_of(example, "cold-room")
+    cases = rated.cases_of(facts)
+    found = []
+    for left in cases:
+        monkeypatch.setattr(fitting, "cases_of", lambda _, left=left: tuple(c for c in cases if c is not left))
+        fit = fitting.fit_system(facts)
+        point = rated.simulate(facts, fit.values, fit.plan, left, None)
+        for datum in left.data:
+            value = rated.observed(fit.plan, left, point, fit.values, datum.of)
+            square = (fit.scatter * value) ** 2
+            for variant in fit.variants:
+                moved = rated.simulate(facts, fit.values, variant.plan, left, point)
+                square += (rated.observed(variant.plan, left, moved, fit.values, datum.of) - value) ** 2
+            found.append((datum.of, (value - datum.value) / math.sqrt(square), value / datum.value - 1))
+    return found
+
+
+def test_each_point_of_the_example_is_covered_by_the_others(
+    example: LoadedPlant, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Leave-one-out over the unit's table: 95 % of left-out values within k = 2, and the band not idle."""
+    misses = _misses(example, monkeypatch)
+    covered = [abs(m) < 2 for _, m, _ in misses]
+    assert len(misses) >= 18
+    assert sum(covered) >= 0.95 * len(covered)
+    assert max(abs(m) for _, m, _ in misses) > 0.5
+    assert max(abs(r) for _, _, r in misses) < 0.03
