@@ -9,6 +9,7 @@ from __future__ import annotations
 import tempfile
 from collections.abc import Callable
 from pathlib import Path
+from typing import Any
 
 from commission.errors import CommissionError
 
@@ -32,7 +33,7 @@ def serve_manual(plant: Path, cache: Path | None, say: Callable[[str], None]) ->
                     say(str(problem))
 
         rebuild()
-        server = LiveReloadServer(rebuild, HOST, PORT, str(site))
+        server: Any = LiveReloadServer(rebuild, HOST, PORT, str(site))
         for watched in _inputs(plant):
             server.watch(str(watched))
         say(f"serving {server.url} until you press Ctrl-C")
