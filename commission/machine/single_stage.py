@@ -92,8 +92,9 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     control = circuit.machine.head_pressure
     if control is None:
         return circuit.free(1.0, FREE, start)
-    if start is not None and start.regime == HELD:
-        held = circuit.held(control, start)
+    likely = start.regime == HELD if start is not None else circuit.guess()[1] < control.hold
+    if likely:
+        held = circuit.held(control, start if start is not None and start.regime == HELD else None)
         if held is not None:
             return held
     free = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
@@ -188,7 +189,7 @@ class _Circuit:
             return self._source_gap(x[0], x[1], taken), self._sink_gap(x[1], given, share)
 
         near = start is not None and len(start.unknowns) == 2
-        guess = start.unknowns if near and start is not None else self._guess()
+        guess = start.unknowns if near and start is not None else self.guess()
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
         return self._result(solution.x[0], solution.x[1], share, regime, solution)
 
@@ -200,7 +201,7 @@ class _Circuit:
             return (self._source_gap(x[0], condensing, self.cycle(x[0], condensing)[1]),)
 
         near = start is not None and len(start.unknowns) == 1
-        guess = start.unknowns if near and start is not None else self._guess()[:1]
+        guess = start.unknowns if near and start is not None else self.guess()[:1]
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
         given = self.cycle(solution.x[0], condensing)[2]
         difference = self.sink_drive(condensing) - self.media.sink.temperature
@@ -220,11 +221,12 @@ class _Circuit:
             return (self._sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
 
         near = start is not None and len(start.unknowns) == 1
-        guess = start.unknowns if near and start is not None else self._guess()[1:]
+        guess = start.unknowns if near and start is not None else self.guess()[1:]
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
         return self._result(evaporating, solution.x[0], 1.0, FREE, solution)
 
-    def _guess(self) -> tuple[float, float]:
+    def guess(self) -> tuple[float, float]:
+        """Evaporating and condensing temperature (K) to start from."""
         source, sink = self.media.source.temperature, self.media.sink.temperature
         evaporating = source - 8.0
         highest = 0.94 * self.machine.refrigerant.T_critical
