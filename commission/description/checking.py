@@ -131,9 +131,10 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
 
 def _wrong_length(context: Mapping[str, Any]) -> str:
     least, most, actual = (context.get(key) for key in ("min_length", "max_length", "actual_length"))
-    if most is not None or (least or 1) > 1:
-        wanted = f"at least {least}" if most is None else f"exactly {most}"
-        return f"{wanted} entries are wanted here; there are {actual}"
+    if most is not None:
+        return f"at most {most} entries are wanted here; there are {actual}"
+    if least is not None and least > 1:
+        return f"at least {least} entries are wanted here; there are {actual}"
     return "at least one entry is wanted here"
 
 

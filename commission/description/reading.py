@@ -119,6 +119,8 @@ def read_yaml(source: Path | str, file: str | None = None) -> ReadFile:
 def _syntax_problem(error: yaml.MarkedYAMLError, file: str) -> Problem:
     mark = error.problem_mark or error.context_mark
     words = ", ".join(part for part in (error.context, error.problem) if part)
+    if "nesting" in words:
+        words = f"nested more than {MAX_DEPTH} levels deep"
     line, column = (mark.line + 1, mark.column + 1) if mark else (1, 1)
     hint = "check indentation, a colon followed by a space, closed brackets and quotes"
     return Problem(f"this is not YAML: {shorten(words)}", file, line, column, allowed=hint)
