@@ -11,7 +11,7 @@ from commission.description import LoadedPlant
 from commission.description.model import Conditions, RatedPoint, System
 from commission.errors import CommissionError
 from commission.quantities import NOMENCLATURE, Display, Explained, Kind, Pressure
-from commission.review.finding import Figure
+from commission.review.finding import Figure, Severity
 from commission.review.thresholds import Threshold, thresholds
 
 if TYPE_CHECKING:
@@ -21,6 +21,10 @@ if TYPE_CHECKING:
     from commission.safety import Figures, SpaceCharge
 
 CONDITION_KEYS: tuple[str, ...] = tuple(Conditions.model_fields)
+IDLE = (("comfort_cooling", "coldest"), ("space_heating", "hottest"))
+"""Duty and day that do not go together: nothing is asked of the plant on such a day."""
+DOUBTFUL = (("liquid_cooling", "coldest"),)
+"""Duty and day that go together at some plants only: what is found there is a note."""
 COOLING_DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling")
 
 
@@ -109,6 +113,10 @@ class SystemFacts:
         found = self.outlooks.get(outlook)
         return found.get(key) if found else None
 
+    def severity(self, outlook: str, usual: Severity) -> Severity:
+        """The severity of a finding at an outlook: a note where the plant may not run on such a day at all."""
+        return "note" if (self.system.duty, outlook) in DOUBTFUL else usual
+
     def safety_figure(self, key: str) -> SafetyFigure | None:
         """A figure of the safety room, None where it was not calculated."""
         return self.safety.get(key) if self.safety else None
@@ -187,8 +195,11 @@ def _outlooks(facts: SystemFacts, model: SystemModel) -> dict[str, Outlook]:
         ("coldest", "on the coldest day of the site", climate.winter_dry_bulb),
     ):
         side = outdoor_side(facts)
-        if air is not None and side is not None:
-            found[name] = _outlook(words, model, {**design, f"heat_{side}_inlet_temperature": air})
+        if air is None or side is None or (facts.system.duty, name) in IDLE:
+            continue
+        if (facts.system.duty, name) in DOUBTFUL:
+            words += ", if it runs then"
+        found[name] = _outlook(words, model, {**design, f"heat_{side}_inlet_temperature": air})
     return found
 
 

@@ -180,6 +180,9 @@ def test_missing_facts_of_system_and_plant(facts: Facts) -> None:
     assert [f.label for f in of_plant.figures] == [
         "climate.summer_dry_bulb", "climate.winter_dry_bulb", "rules.safety",
     ]  # fmt: skip
+    assert of_system.title == "Not all is written of Chiller one that other pages need: 3 facts are missing."
+    sealed = facts({"nameplate": None, "sealed": "yes"})
+    assert not list(missing.of_the_system(sealed))
     sound = facts()
     assert not list(missing.of_the_system(sound))
     assert not list(missing.of_the_plant(sound.plant))
@@ -187,7 +190,7 @@ def test_missing_facts_of_system_and_plant(facts: Facts) -> None:
 
 def test_record_files_that_are_not_as_filed(facts: Facts) -> None:
     """An altered record is an error, a stray file a note, and an untouched list says nothing."""
-    from commission.records.disk import digest_of_file
+    from commission.records import digest_of_file
 
     here = facts()
     folder = here.plant.loaded.folder / "records"
@@ -210,18 +213,17 @@ def test_records_that_cannot_be_read(facts: Facts, monkeypatch: pytest.MonkeyPat
     import datetime as dt
 
     from commission.errors import Problem
-    from commission.records import history
 
     def record(holds: bool) -> SimpleNamespace:
         started = dt.datetime(2027, 4, 1, tzinfo=dt.UTC)
         return SimpleNamespace(path=Path("visit.yaml"), started=started, seal_holds=holds)
 
     plant = facts().plant
-    monkeypatch.setattr(history, "damaged", lambda _: ())
-    monkeypatch.setattr(history, "history", lambda _: (record(True),))
+    monkeypatch.setattr("commission.records.damaged", lambda _: ())
+    monkeypatch.setattr("commission.records.history", lambda _: (record(True),))
     assert not list(files.unreadable_records(plant))
-    monkeypatch.setattr(history, "damaged", lambda _: (Problem("half of it is gone", file="old.yaml"),))
-    monkeypatch.setattr(history, "history", lambda _: (record(False),))
+    monkeypatch.setattr("commission.records.damaged", lambda _: (Problem("half of it is gone", file="old.yaml"),))
+    monkeypatch.setattr("commission.records.history", lambda _: (record(False),))
     found = list(files.unreadable_records(plant))
     assert [(remark.severity, remark.path) for remark in found] == [
         ("error", "records/old.yaml"), ("error", "records/visit.yaml"),

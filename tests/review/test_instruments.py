@@ -13,7 +13,6 @@ import pytest
 
 from commission.acceptance.instruments import instrument_budget
 from commission.properties import refrigerant
-from commission.records import history
 from commission.review.facts import PlantFacts, SystemFacts
 from commission.review.finding import Figure, Remark
 from commission.review.rules import calibration, instruments
@@ -67,11 +66,11 @@ def test_a_record_read_with_an_instrument_out_of_calibration(facts: Facts, monke
         return SimpleNamespace(id="a", path=Path("2027-04-01.yaml"), started=started, filed=filed, file=file)
 
     plant = facts().plant
-    monkeypatch.setattr(history, "history", lambda _: (record("2027-03-31"),))
+    monkeypatch.setattr("commission.records.history", lambda _: (record("2027-03-31"),))
     (remark,) = calibration.expired_on_the_day(plant)
     assert remark.path == "records/2027-04-01.yaml"
     assert [f.text for f in remark.figures] == ["2027-03-31", "2027-04-01"]
-    monkeypatch.setattr(history, "history", lambda _: (record("2027-04-01"),))
+    monkeypatch.setattr("commission.records.history", lambda _: (record("2027-04-01"),))
     assert not list(calibration.expired_on_the_day(plant))
 
 
@@ -84,12 +83,16 @@ def test_an_instrument_without_serial_number(facts: Facts) -> None:
 
 
 def test_a_reading_off_every_scale(facts: Facts) -> None:
-    """15 bar absolute is on the 40 bar gauge; where only the 12 bar gauge is left, nothing shows it."""
+    """15 bar absolute is on the 40 bar gauge, not on the 12 bar one; a sealed unit has no port for either."""
     assert not list(instruments.off_the_scale(facts(expected={"design": DESIGN})))
     (remark,) = instruments.off_the_scale(facts(expected={"design": DESIGN}, instruments={"high gauge": None}))
     assert remark.severity == "warning"
     assert remark.path == "instruments"
     assert figure(remark, "scale of low gauge").text == "−1.00 bar g to 12.00 bar g"
+    sealed = {"sealed": "yes"}
+    assert not list(
+        instruments.off_the_scale(facts(sealed, expected={"design": DESIGN}, instruments={"high gauge": None}))
+    )
 
 
 def test_the_named_gauge_is_judged_alone(facts: Facts) -> None:

@@ -169,6 +169,27 @@ def test_condensing_must_be_warmer_than_the_sink(
     assert [remark.severity for remark in found] == (["error"] if fires else [])
 
 
+@pytest.mark.parametrize(
+    ("outlet", "evaporating", "fires"),
+    [(38.0, -4.0, False), (44.0, -4.0, False), (65.0, -4.0, True), (38.0, 6.0, True)],
+)
+def test_expected_readings_may_not_cross(facts: Facts, outlet: float, evaporating: float, fires: bool) -> None:
+    """42 °C condensing cannot heat a sink from 32 to 65 °C, nor can 4 °C air boil a refrigerant at 6 °C."""
+    values = {
+        "condensing_temperature": 42.0, "heat_sink_inlet_temperature": 32.0, "heat_sink_outlet_temperature": outlet,
+        "evaporating_temperature": evaporating, "heat_source_inlet_temperature": 4.0,
+    }  # fmt: skip
+    expected = {"design": {key: (value + 273.15, 0.5) for key, value in values.items()}}
+    found = list(exchangers.expected_crosses(facts(expected=expected)))
+    assert [remark.severity for remark in found] == (["error"] if fires else [])
+    if fires:
+        shown = {f.label: f.value for f in found[0].figures}
+        if outlet > 60:
+            assert shown["Heat sink outlet temperature"] == pytest.approx(outlet + 273.15)
+        else:
+            assert shown["Evaporating temperature"] == pytest.approx(evaporating + 273.15)
+
+
 def test_a_cooler_is_held_to_what_its_air_can_carry(facts: Facts) -> None:
     """2100 m3/h from 4 °C, 85 % to saturation at -4 °C gives 9.6 kW or so: 3.6 kW is sound, 9 kW not, 12 kW impossible.
 

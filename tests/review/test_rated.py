@@ -94,6 +94,35 @@ def test_points_that_scatter(facts: Facts, share: float | None, fires: bool) -> 
         assert found[0].figures[0].text == "8.0 %"
 
 
+def test_a_point_that_the_model_does_not_give_back(facts: Facts) -> None:
+    """3.4 kW net or gross may be 3.4 or 3.5 kW of the model; 1.5 kW of power against 1.7 kW is too far."""
+
+    def model(power: float) -> Any:
+        values = {"cooling_capacity": 3600.0, "net_cooling_capacity": 3450.0, "power_input": power}
+        expected = {key: Explained(key, value, 1.0, "as_stated") for key, value in values.items()}
+        return SimpleNamespace(
+            predict=lambda _: SimpleNamespace(expected=expected), condition_axes=dict.fromkeys(AT), fitted={}
+        )
+
+    here = facts({"rated_points": [POINT]})
+    assert not list(rated.not_reproduced(replace(here, model=model(1520.0))))
+    (remark,) = rated.not_reproduced(replace(here, model=model(1700.0)))
+    assert remark.severity == "warning"
+    assert figure(remark, "Power input, stated").value == pytest.approx(1500)
+    assert figure(remark, "Power input, by the model").value == 1700.0
+
+
+def test_an_outlet_that_the_model_does_not_give_back(facts: Facts) -> None:
+    """Water stated to leave at 65 °C and calculated to leave at 15 °C is not the same machine."""
+    point = {**POINT, "heat_sink_outlet_temperature": "65 °C"}
+    outlet = Explained("heat_sink_outlet_temperature", 288.15, 0.1, "as_stated")
+    model: Any = SimpleNamespace(
+        predict=lambda _: SimpleNamespace(expected={outlet.quantity: outlet}), condition_axes=dict.fromkeys(AT)
+    )
+    (remark,) = rated.not_reproduced(replace(facts({"rated_points": [point]}), model=model))
+    assert figure(remark, "Heat sink outlet temperature, by the model").text == "15.0 °C"
+
+
 def test_a_compressor_table_is_held_to_carnot_and_to_efficiencies(facts: Facts) -> None:
     """-10/40 °C allows 263.15 / 50 = 5.26: 5.5 is impossible, 4.5 means over 100 % efficiency, 2.5 is sound."""
     point = {"evaporating_temperature": "-10 °C", "condensing_temperature": "40 °C", "compressor_power": "1 kW"}

@@ -136,6 +136,12 @@ def test_water_freezes_by_the_coldest_refrigerant(facts: Facts, coldest: float, 
         assert figure(remark, "freezing point of the water").value == pytest.approx(CELSIUS)
 
 
+def test_a_chiller_may_not_run_on_the_coldest_day(facts: Facts) -> None:
+    """Whether a chiller runs in winter is not known, so that freezing on the coldest day is a note, not a warning."""
+    (remark,) = freezing.liquid_can_freeze(facts(LIQUID, coldest={"coldest": -3 + CELSIUS}))
+    assert remark.severity == "note"
+
+
 def test_brine_freezes_later(facts: Facts) -> None:
     """Propylene glycol of 30 % by mass freezes near -12.7 °C (ASHRAE tables): -5 °C is no risk, -14 °C is."""
     brine = {**LIQUID, "heat_source": {**LIQUID["heat_source"], "medium": "propylene glycol", "mass_fraction": "30 %"}}

@@ -22,10 +22,10 @@ def not_calculated(facts: SystemFacts) -> Iterator[Remark]:
             "Correct or complete the description; until then no reading of this system can be judged.",
         )
         return
-    for outlook in facts.outlooks.values():
+    for key, outlook in facts.outlooks.items():
         if outlook.prediction is None:
             yield Remark(
-                "warning",
+                facts.severity(key, "warning"),
                 facts.path(),
                 f"{facts.title} {outlook.name}: not calculated: because {outlook.reason}",
                 (),

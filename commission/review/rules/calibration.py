@@ -66,7 +66,7 @@ def expired_on_the_day(plant: PlantFacts) -> Iterator[Remark]:
 
     Source: as `expired`; the calibration is the one frozen into the record, so a later renewal changes nothing.
     """
-    from commission.records.history import history, in_force
+    from commission.records import history, in_force
 
     for record in in_force(history(plant.loaded)):
         day = record.started.date().isoformat()

@@ -25,7 +25,7 @@ def discharge_too_hot(facts: SystemFacts) -> Iterator[Remark]:
             continue
         own = setting is not None and setting <= entry.value
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path("controls", "discharge_temperature_limit") if own else facts.path(),
             f"The discharge of {facts.title} is expected to run too hot {facts.outlooks[name].name}.",
             (
@@ -53,7 +53,7 @@ def outside_envelope(facts: SystemFacts) -> Iterator[Remark]:
         if evaporating is None or condensing is None or inside(corners, evaporating.value, condensing.value):
             continue
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path("compressor", "envelope"),
             f"The compressor of {facts.title} is expected to run outside its envelope {facts.outlooks[name].name}.",
             (explained_figure(facts.plant, evaporating), explained_figure(facts.plant, condensing)),
@@ -82,7 +82,7 @@ def pressure_ratio_too_high(facts: SystemFacts) -> Iterator[Remark]:
         if expected is None or expected.value <= entry.value:
             continue
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path(),
             f"The pressure ratio of {facts.title} is high for one stage {facts.outlooks[name].name}.",
             (
@@ -128,7 +128,7 @@ def over_the_nameplate_current(facts: SystemFacts) -> Iterator[Remark]:
         if stamped is None or expected is None or expected.value <= stamped:
             continue
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path("nameplate", "rated_current"),
             f"{facts.title} is expected to draw more than the current of its nameplate {facts.outlooks[name].name}.",
             (
@@ -152,7 +152,7 @@ def no_head_pressure_in_winter(facts: SystemFacts) -> Iterator[Remark]:
     if expansion is None or expansion.device == "electronic valve" or condensing.value >= entry.value:
         return
     yield Remark(
-        "warning",
+        facts.severity("coldest", "warning"),
         facts.path("controls"),
         f"Nothing holds up the condensing pressure of {facts.title} on the coldest day.",
         (

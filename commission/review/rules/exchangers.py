@@ -86,6 +86,43 @@ def condenser_crosses(facts: SystemFacts) -> Iterator[Remark]:
             )
 
 
+def expected_crosses(facts: SystemFacts) -> Iterator[Remark]:
+    """Expected readings whose temperatures cross, so that the calculation itself cannot be right.
+
+    Source: second law, as for stated points: the sink leaves colder than the discharge gas and, where it is already
+    colder than it when condensation starts, by no more than desuperheating gives; the source enters warmer than the
+    refrigerant evaporates.
+    """
+    share = facts.plant.limit("desuperheating_share")
+    for name, outlook in facts.outlooks.items():
+        values = {key: found.value for key in CROSSING if (found := outlook.get(key)) is not None}
+        condensing, inlet, outlet = (values.get(key) for key in CROSSING[:3])
+        evaporating, source = (values.get(key) for key in CROSSING[3:])
+        crossed = []
+        if condensing is not None and inlet is not None:
+            start = inlet + (1 - share) * ((outlet if outlet is not None else inlet) - inlet)
+            if start >= condensing:
+                crossed += list(CROSSING[:3])
+        if evaporating is not None and source is not None and evaporating >= source:
+            crossed += list(CROSSING[3:])
+        if not crossed:
+            continue
+        yield Remark(
+            facts.severity(name, "error"),
+            facts.path(),
+            f"What is expected of {facts.title} {outlook.name} cannot be, since temperatures cross in an exchanger.",
+            tuple(facts.plant.quantity(key, values[key]) for key in crossed if key in values),
+            "Do not use the expected readings of this system; check refrigerant, media and rated points.",
+        )
+        return
+
+
+CROSSING = (
+    "condensing_temperature", "heat_sink_inlet_temperature", "heat_sink_outlet_temperature",
+    "evaporating_temperature", "heat_source_inlet_temperature",
+)  # fmt: skip
+
+
 def cooler_beyond_its_air(facts: SystemFacts) -> Iterator[Remark]:
     """A catalogue rating of an air cooler that asks more of its air flow than saturated air at coil temperature gives.
 

@@ -13,9 +13,9 @@ def changed_records(plant: PlantFacts) -> Iterator[Remark]:
 
     Source: the list of digests beside the records (SHA256SUMS). It detects accident, not fraud.
     """
-    from commission.records.sums import compare_sums
+    from commission.records import check_files
 
-    for found in compare_sums(plant.loaded.folder / "records"):
+    for found in check_files(plant.loaded):
         figures = [Figure("digest listed", found.listed)] if found.listed else []
         figures += [Figure("digest found", found.found)] if found.found else []
         yield Remark(
@@ -34,7 +34,7 @@ def unreadable_records(plant: PlantFacts) -> Iterator[Remark]:
 
     Source: the digest that each filed record carries of itself.
     """
-    from commission.records.history import damaged, history
+    from commission.records import damaged, history
 
     for problem in damaged(plant.loaded):
         yield Remark(

@@ -40,7 +40,7 @@ def liquid_can_freeze(facts: SystemFacts) -> Iterator[Remark]:
             continue
         frozen = coldest < freezing
         yield Remark(
-            "warning" if frozen else "note",
+            facts.severity(name, "warning") if frozen else "note",
             facts.path("heat_source"),
             f"The {medium.medium} of {facts.title} {'can freeze' if frozen else 'comes close to freezing'} in the "
             f"evaporator {facts.outlooks[name].name}.",
@@ -68,7 +68,7 @@ def coil_can_frost(facts: SystemFacts) -> Iterator[Remark]:
         if coldest is None or coldest >= ICE:
             continue
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path("evaporator"),
             f"The coil of {facts.title} can frost {facts.outlooks[name].name} and no defrost is written.",
             (facts.plant.figure("refrigerant where it enters the coil", coldest, Kind.TEMPERATURE),),

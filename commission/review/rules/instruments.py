@@ -55,6 +55,8 @@ def off_the_scale(facts: SystemFacts) -> Iterator[Remark]:
     since it can burst or be spoilt.
     """
     for key in READ_ON_SITE:
+        if facts.system.sealed and NOMENCLATURE[key].kind is Kind.PRESSURE:
+            continue  # no ports
         candidates = scales(facts, key)
         if not candidates:
             continue
@@ -76,7 +78,7 @@ def _off_scale(
     figures = [explained_figure(facts.plant, expected, f"expected {facts.outlooks[outlook].name}")]
     figures += [Figure(f"scale of {scale.id}", _scale_text(facts, scale, kind)) for scale in candidates]
     return Remark(
-        "error" if overloaded else "warning",
+        facts.severity(outlook, "error" if overloaded else "warning"),
         facts.path("measured_with", key) if chosen else "instruments",
         f"{who} the expected {NOMENCLATURE[key].label.lower()} of {facts.title}.",
         tuple(figures),
@@ -97,7 +99,7 @@ def limiter_off_the_scale(facts: SystemFacts) -> Iterator[Remark]:
     Source: common practice: each limit device is proved with a gauge on the same pressure.
     """
     setting, candidates = facts.system.controls.high_pressure_limit, scales(facts, "discharge_pressure")
-    if setting is None or not candidates:
+    if setting is None or not candidates or facts.system.sealed:
         return
     limit = facts.absolute(setting)
     if any(scale.high >= limit for scale in candidates):

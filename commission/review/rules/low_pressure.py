@@ -29,7 +29,7 @@ def cut_out_over_suction(facts: SystemFacts) -> Iterator[Remark]:
             continue
         sure = expected.value + 2 * (expected.uncertainty or 0.0) < cut_out
         yield Remark(
-            "error" if sure and name == "design" else "warning",
+            "error" if sure and name == "design" else facts.severity(name, "warning"),
             facts.path("controls", "low_pressure_cut_out"),
             f"{facts.title} is expected to {'stop' if margin <= 0 else 'come close to stopping'} on low pressure "
             f"{facts.outlooks[name].name}.",
@@ -84,7 +84,7 @@ def below_atmosphere(facts: SystemFacts) -> Iterator[Remark]:
         if expected is None or expected.value >= barometric:
             continue
         yield Remark(
-            "warning",
+            facts.severity(name, "warning"),
             facts.path(),
             f"{facts.title} is expected to draw its suction below atmosphere {facts.outlooks[name].name}.",
             (

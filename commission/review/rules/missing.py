@@ -14,6 +14,13 @@ HEADLINE = (
     "power_input",
 )  # fmt: skip
 
+TESTED_ON_SITE = (
+    "nameplate.allowable_pressure_low",
+    "nameplate.allowable_pressure_high",
+    "controls.high_pressure_limit",
+)
+"""Facts that a factory-sealed unit does not need, since nothing of it is tested on site."""
+
 
 def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
     """The assumption that makes most of the uncertainty of the headline readings at the design condition.
@@ -77,12 +84,13 @@ def of_the_system(facts: SystemFacts) -> Iterator[Remark]:
         ("controls.high_pressure_limit", system.controls.high_pressure_limit, "proof of the limiter"),
         ("spaces", system.spaces.evaporator or system.spaces.condensing_unit, "charge limits of the rooms"),
     ]
-    missing = [(key, use) for key, value, use in wanted if value is None]
+    needed = [entry for entry in wanted if not system.sealed or entry[0] not in TESTED_ON_SITE]
+    missing = [(key, use) for key, value, use in needed if value is None]
     if missing:
         yield Remark(
             "note",
             facts.path(),
-            f"{_facts(len(missing))} not written of {facts.title} that other pages need.",
+            f"Not all is written of {facts.title} that other pages need: {_facts(len(missing))} missing.",
             tuple(Figure(key, f"needed for {use}") for key, use in missing),
             "Read them from nameplate and setting sheet and write them.",
         )
@@ -107,7 +115,7 @@ def of_the_plant(plant: PlantFacts) -> Iterator[Remark]:
         yield Remark(
             "note",
             "plant",
-            f"{_facts(len(missing))} not written of the plant as a whole.",
+            f"Not all is written of the plant as a whole: {_facts(len(missing))} missing.",
             tuple(Figure(key, f"needed for {use}") for key, use in missing),
             "Ask the owner, and write them.",
         )

@@ -62,8 +62,8 @@ def detection(facts: SystemFacts) -> Iterator[Remark]:
             f"A leak of the whole charge of {facts.title} passes the practical limit in {space.name}, and "
             + ("no detector watches it." if written.leak_detector is False else "no detector is written."),
             (
-                facts.plant.figure("charge over volume of the room", space.concentration.value, Kind.DENSITY),
-                facts.plant.figure("practical limit", limit.value, Kind.DENSITY),
+                facts.plant.figure("charge over volume of the room", space.concentration.value, Kind.DENSITY, 5),
+                facts.plant.figure("practical limit", limit.value, Kind.DENSITY, 5),
             ),
             "Ask whether the standard that applies wants a detector or ventilation here.",
             f"EN 378-3; practical limit: {limit.source}",

@@ -6,11 +6,14 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from itertools import combinations
 
-from commission.quantities import NOMENCLATURE, Kind
-from commission.review.facts import SystemFacts, conditions_of
+from commission.description.model import RatedPoint
+from commission.errors import CommissionError
+from commission.quantities import NOMENCLATURE, Explained, Kind
+from commission.review.facts import SystemFacts, conditions_of, reason_of
 from commission.review.finding import Figure, Remark
 
 RESULTS = ("cooling_capacity", "heating_capacity", "power_input")
+GIVEN_BACK = (*RESULTS, "heat_source_outlet_temperature", "heat_sink_outlet_temperature")
 OUTPUTS = ("cooling_capacity", "heating_capacity")
 COLD_KEYS = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "evaporating_temperature")
 WARM_KEYS = ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature", "condensing_temperature")
@@ -194,3 +197,55 @@ def scatter(facts: SystemFacts) -> Iterator[Remark]:
         entry.source,
         entry.mark,
     )
+
+
+def not_reproduced(facts: SystemFacts) -> Iterator[Remark]:
+    """A rated point whose stated figures the model fitted to it does not give back at its own condition.
+
+    Source: a fit passes through its points up to their scatter (threshold `rated_scatter`; outlets by
+    `rated_outlet`). Where it does not, either the point belongs to another machine or the calculation does not
+    understand it: its expectations then rest on nothing.
+    """
+    if facts.model is None:
+        return
+    for index, point in facts.rated_points():
+        at = {key: value for key, value in conditions_of(point).items() if key in facts.model.condition_axes}
+        try:
+            expected = facts.model.predict(at).expected
+        except CommissionError as error:
+            yield Remark(
+                "warning",
+                facts.path("rated_points", index),
+                f"Rated point {index + 1} of {facts.title} cannot be calculated back: {reason_of(error)}.",
+                (),
+                "Check the point; nothing that is expected near it is sure.",
+            )
+            return  # the others most likely fail alike
+        figures = [figure for key in GIVEN_BACK for figure in _missed(facts, key, point, expected)]
+        if figures:
+            yield Remark(
+                "warning",
+                facts.path("rated_points", index),
+                f"The model of {facts.title} does not give back rated point {index + 1}.",
+                tuple(figures),
+                "Check the point. If it is right, do not rest a verdict on what is expected near it.",
+            )
+
+
+def _missed(facts: SystemFacts, key: str, point: RatedPoint, expected: Mapping[str, Explained]) -> Iterator[Figure]:
+    """Stated and expected value of one quantity where they lie too far apart."""
+    stated: float | None = getattr(point, key)
+    # a capacity that says neither net nor gross may be either
+    alternatives = ("cooling_capacity", "net_cooling_capacity") if key == "cooling_capacity" else (key,)
+    values = [expected[name].value for name in alternatives if name in expected]
+    if stated is None or not values:
+        return
+    nearest_value = min(values, key=lambda value: abs(value - stated))
+    if NOMENCLATURE[key].kind is Kind.TEMPERATURE:
+        allowed = facts.plant.limit("rated_outlet")
+    else:
+        allowed = facts.plant.limit("rated_scatter") * stated
+    if abs(nearest_value - stated) > allowed:
+        label = NOMENCLATURE[key].label
+        yield facts.plant.quantity(key, stated, f"{label}, stated")
+        yield facts.plant.quantity(key, nearest_value, f"{label}, by the model")
