@@ -13,6 +13,7 @@ from commission.manual.day_sheet import day_sheet
 from commission.manual.documents import address, copied_files, document_links, owner_pages
 from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, ph_figure
 from commission.manual.records_pages import (
     Archive,
@@ -50,7 +51,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     book = Book()
     documents, left_documents = copied_files(plant.loaded.folder)
     pages, left_pages = owner_pages(plant.loaded.folder)
-    texts: dict[str, bytes] = {}
+    texts: dict[str, bytes] = {"style/paper.css": paper_style(plant.name, plant.loaded.digest)}
     archive = read_archive(plant)
     for path in ("search-index.js", "scripts/search.js", *(f.site_path for f in (*documents, *archive.files) if f.sheet is None)):
         book.add_file(path)

@@ -138,10 +138,10 @@ def _exchangers(w: _Writer, s: System) -> Iterator[FactGroup]:
         if part.rating is not None:
             r, path = part.rating, f"{name}.rating"
             w.add("Catalogue capacity", f"{path}.capacity", r.capacity, Kind.POWER)
-            w.add("at a difference of", f"{path}.temperature_difference", r.temperature_difference,
+            w.add("Catalogue temperature difference", f"{path}.temperature_difference", r.temperature_difference,
                   Kind.TEMPERATURE_DIFFERENCE)  # fmt: skip
-            w.add("at air on", f"{path}.air_on", r.air_on, Kind.TEMPERATURE)
-            w.add("read from", f"{path}.source", r.source)
+            w.add("Catalogue air on", f"{path}.air_on", r.air_on, Kind.TEMPERATURE)
+            w.add("Catalogue read from", f"{path}.source", r.source)
         w.add("Fan power", f"{name}.fan_power", part.fan_power, Kind.POWER)
         if name == "evaporator" and s.evaporator.defrost is not None:
             d = s.evaporator.defrost

@@ -41,6 +41,7 @@ class LimitView:
     rule: str
     value: str
     how: How | None
+    because: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,6 +72,8 @@ def figure_row(figure: Figure, data: SystemData, display: Display) -> Row:
         value, unit = f"{figure.value:.0f}", "Pa absolute"
     elif figure.key == "leak_check_months":
         value, unit = f"{figure.value:.0f}", "months"
+    elif figure.kind is Kind.DURATION and figure.value >= 7200.0:
+        value, unit = f"{figure.value / 3600:.0f}", "h"
     elif figure.kind is Kind.PRESSURE_DIFFERENCE and abs(figure.value) >= 5000.0:
         factor, unit = (1e5, "bar") if display.system == "metric" else (6894.757293168361, "psi")
         value = f"{figure.value / factor:.2f}"
@@ -96,7 +99,7 @@ def _groups(figures: Figures, data: SystemData, display: Display) -> tuple[tuple
 def _limit(limit: ChargeLimit, data: SystemData, display: Display) -> LimitView:
     document = f"{limit.document}, {limit.edition}" if limit.edition else limit.document
     if limit.value is None:
-        return LimitView(document, limit.rule, f"none: {limit.reason}", None)
+        return LimitView(document, limit.rule, "none", None, limit.reason or "the document gives none")
     how = replace(show_how(limit.value, display, data.assumptions, kind=Kind.MASS), source=document)
     return LimitView(document, limit.rule, display.text(limit.value.value, Kind.MASS), how)
 
