@@ -11,6 +11,7 @@ from typing import Any
 from commission.errors import InputError, NotCalculatedError, Problem, nearest
 
 
+@cache
 def read_yaml(name: str) -> Any:
     """A YAML file of this room, by the quick parser where the YAML library has it."""
     import yaml
@@ -33,6 +34,12 @@ def modelled() -> tuple[str, ...]:
 def other_names() -> Mapping[str, tuple[str, ...]]:
     """Ordinary names by designation, such as `ammonia` for R-717."""
     return {name: tuple(words) for name, words in _models()["other_names"].items()}
+
+
+def blends() -> tuple[str, ...]:
+    """Designations of the modelled refrigerants of more than one component."""
+    entries = read_yaml("register.yaml")["refrigerants"]
+    return tuple(name for name in modelled() if len(entries[name]["composition"]) > 1)
 
 
 def model_of(designation: str) -> tuple[tuple[str, ...], tuple[float, ...], tuple[float, float]]:

@@ -7,6 +7,7 @@ those fail on blends. Outside the ranges a `PropertyRangeError` says what the li
 
 from __future__ import annotations
 
+import copy
 import math
 from functools import cache, cached_property
 from typing import TYPE_CHECKING
@@ -59,6 +60,13 @@ class Refrigerant(Saturation):
         from commission.properties.uncertainty import pressure_relative_uncertainty
 
         return pressure_relative_uncertainty(self, self.register)
+
+    def with_register(self, entry: RegisterEntry) -> Refrigerant:
+        """The same refrigerant with another register entry, as a plant states it; see `register.register`."""
+        other = copy.copy(self)
+        other.__dict__.pop("pressure_relative_uncertainty", None)
+        other.__dict__["register"] = entry
+        return other
 
     # Single phase
 
@@ -269,8 +277,8 @@ class Refrigerant(Saturation):
     def _above_from_enthalpy(self, p: float, h: float) -> State:
         """At supercritical pressure, where temperature and enthalpy rise together, so that there is one state.
 
-        Newton in density and temperature, in which the equation is smooth through the critical region, so that one start
-        in its middle does for all.
+        Newton in density and temperature, in which the equation is smooth through the critical region, so that one
+        start in its middle does for all.
         """
         self._need_supercritical(p)
         ends = self._dew.row(self.T_high), self._bubble.row(self.T_high)

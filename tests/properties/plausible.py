@@ -72,10 +72,10 @@ def check_cycle(r: Refrigerant, point: CyclePoint) -> None:
 def _check_throttled(r: Refrigerant, inlet: State, liquid: State, T_dew: float) -> None:
     assert math.isclose(inlet.h, liquid.h, abs_tol=1e-3)
     assert inlet.s >= liquid.s - 1e-4  # a throttle makes entropy
-    assert inlet.T <= T_dew + 1e-6
+    assert T_dew + 1e-6 >= inlet.T
     if inlet.quality is None:
         return
-    assert inlet.T >= r.bubble_temperature(inlet.p) - 1e-6
+    assert r.bubble_temperature(inlet.p) - 1e-6 <= inlet.T
     assert 0 <= inlet.quality <= 1
     mean = r.mean_evaporating_temperature(inlet.p, inlet.h)
     assert inlet.T - 1e-6 <= mean <= T_dew + 1e-6
