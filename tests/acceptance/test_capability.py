@@ -1,0 +1,102 @@
+"""Before the visit: what can be decided with these instruments, and that the named change would decide it."""
+
+from __future__ import annotations
+
+import datetime as dt
+from pathlib import Path
+
+import pytest
+
+from commission.acceptance import Budget, apply_change, capability, decide
+from commission.description import LoadedPlant
+from commission.errors import InputError
+from commission.prediction import SystemModel, fit
+from tests.acceptance.conftest import COLD_ROOM, write_plant
+
+SINK = "heat_sink_inlet_temperature"
+
+
+def test_every_instrument_is_put_to_use(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """Each quantity that can be read has its expected value, its instrument and the deviation that would be seen."""
+    found = capability(cold_room, cold_room_model, {SINK: 295.15}, on=dt.date(2026, 5, 14))
+    rows = {r.key: r for r in found.readings}
+    assert rows["suction_pressure"].instrument == "low gauge"
+    assert rows["discharge_pressure"].instrument == "high gauge"
+    assert rows["discharge_temperature"].instrument == "pipe probes"
+    assert rows["heat_source_outlet_temperature"].instrument == "air probe"
+    assert rows["compressor_superheat"].instrument is None  # made of a gauge and a probe
+    expected = cold_room_model.predict({SINK: 295.15}).expected
+    for key, row in rows.items():
+        assert row.expected.value == expected[key].value
+        assert row.detectable == pytest.approx(row.budget.expanded())
+        assert row.detectable > 0.0
+    assert "no instrument of the plant reads heat source flow" in found.not_read["heat_source_flow"]
+
+
+def test_undecidable_guarantee_names_a_change_that_decides(
+    cold_room: LoadedPlant, tmp_path: Path
+) -> None:
+    """A guarantee near what the model expects cannot be decided by clamped-on probes; the named change, applied to the
+    budget, gives a decision."""
+    near = write_plant(tmp_path / "near", COLD_ROOM.replace("value: 3.3 kW", "value: 3.7 kW"))
+    found = capability(near, fit(near, "cold-room"), {SINK: 300.15})
+    row = found.guarantees[0]
+    assert not row.decided
+    assert row.change is not None
+    assert row.decision is not None
+    assert row.verdict.measured is not None
+    assert row.verdict.budget is not None
+    better = apply_change(row.verdict.budget, row.change)
+    d = row.decision
+    after = decide(row.verdict.measured.value, better, d.limit_low, d.limit_high, d.rule, d.confidence,
+                   d.largest_expanded_uncertainty)  # fmt: skip
+    assert after.outcome == "conforming"
+    assert better.standard < row.verdict.budget.standard
+    assert d.what_would_decide is not None
+    assert cold_room.digest != near.digest
+
+
+def test_decidable_guarantee_needs_no_change(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
+    """The chiller's flow meter and matched pair can prove its guarantees; no change is asked for."""
+    found = capability(chiller, chiller_model)
+    assert [(g.decided, g.change) for g in found.guarantees] == [(True, None), (True, None)]
+
+
+def test_matched_pair_is_what_makes_it_provable(chiller: LoadedPlant, tmp_path: Path) -> None:
+    """Without the matched pair the range of the water is too uncertain for its tolerance, and that is the advice."""
+    text = (chiller.folder / "plant.yaml").read_text(encoding="utf-8")
+    loose = text.replace("matched_pair: yes, resolution: 0.01 K", "resolution: 0.1 K").replace(
+        "class: IEC 60751 A", "class: IEC 60751 B"
+    )
+    plain = write_plant(tmp_path / "loose", loose)
+    found = capability(plain, fit(plain, "chiller"))
+    row = found.guarantees[0]
+    assert not row.decided
+    assert row.change is not None
+    assert "two probes compared in one bath" in row.change.text
+
+
+def test_inlets_without_an_instrument_are_assumed(cold_room: LoadedPlant, tmp_path: Path) -> None:
+    """A plant without any instrument still gets a page: inlets are assumed with a warning, the rest is listed as unread."""
+    start = COLD_ROOM.index("instruments:")
+    bare = COLD_ROOM[:start] + COLD_ROOM[COLD_ROOM.index("systems:") :]
+    bare = bare.replace("    measured_with: {power_input: power meter}\n", "")
+    plant = write_plant(tmp_path / "bare", bare)
+    found = capability(plant, fit(plant, "cold-room"))
+    assert set(found.conditions) == {SINK, "heat_source_inlet_temperature"}
+    assert found.readings == ()
+    assert "suction_pressure" in found.not_read
+    assert found.guarantees[0].verdict.withheld is not None
+    assert cold_room.plant.instruments
+
+
+def test_wrong_forecast_is_refused(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """A condition that the system does not have is an error."""
+    with pytest.raises(InputError):
+        capability(cold_room, cold_room_model, {"compressor_speed": 50.0})
+
+
+def test_no_budget_is_empty(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """No row claims certainty: each budget has components."""
+    for row in capability(cold_room, cold_room_model).readings:
+        assert row.budget != Budget()

@@ -1,0 +1,177 @@
+"""The frozen sheet: same bytes, tampering detected, values between the points, and verdicts that never move."""
+
+from __future__ import annotations
+
+import datetime as dt
+from pathlib import Path
+
+import pytest
+
+from commission.acceptance import Measured, SheetError, TestSheet, grid_of, judge, make_sheet, read_sheet
+from commission.acceptance.sheet import digest_of
+from commission.description import LoadedPlant
+from commission.errors import InputError, NotCalculatedError
+from commission.prediction import SystemModel, fit
+from tests.acceptance.conftest import COLD_ROOM, write_plant
+from tests.acceptance.visits import visit
+
+SINK, SOURCE = "heat_sink_inlet_temperature", "heat_source_inlet_temperature"
+RANGES = {SINK: grid_of(288.15, 308.15, 2.5), SOURCE: grid_of(273.15, 277.15, 2.0)}
+
+
+@pytest.fixture(scope="module")
+def sheet(cold_room: LoadedPlant, cold_room_model: SystemModel) -> TestSheet:
+    """A sheet of the cold room over 15 to 35 °C outdoors."""
+    return make_sheet(cold_room, cold_room_model, RANGES, prepared_for=dt.date(2026, 5, 14), title="acceptance test")
+
+
+def at(sink: float, source: float) -> dict[str, Measured]:
+    """A sure condition."""
+    return {SINK: Measured(SINK, sink), SOURCE: Measured(SOURCE, source)}
+
+
+def test_same_sheet_same_bytes(sheet: TestSheet, cold_room: LoadedPlant) -> None:
+    """Made twice from the same description, and read back, the text is the same to the byte."""
+    again = make_sheet(
+        cold_room, fit(cold_room, "cold-room"), RANGES, prepared_for=dt.date(2026, 5, 14), title="acceptance test"
+    )
+    assert again.to_text() == sheet.to_text()
+    assert read_sheet(sheet.to_text()).to_text() == sheet.to_text()
+    assert read_sheet(sheet.to_text()).digest == sheet.digest
+
+
+def test_sheet_says_what_it_was_made_from(sheet: TestSheet, cold_room: LoadedPlant) -> None:
+    """Digest of the description, versions, instruments with their statement, assumptions and the day are in it."""
+    text = sheet.to_text()
+    assert cold_room.digest in text
+    assert set(sheet.versions) == {"commission", "CoolProp"}
+    assert sheet.instruments["high gauge"]["accuracy of_span"] == "0.5 %"
+    assert sheet.instruments["pipe probes"]["calibrated_until"] == "2027-02-28"
+    assert "prepared_for: '2026-05-14'" in text
+    assert "shell_heat_loss_share" in sheet.assumptions
+    capacity, power = sheet.targets_for("guarantee")
+    assert capacity.instruments == ("low gauge", "pipe probes", "high gauge", "power meter", "air probe")
+    assert power.instruments == ("power meter", "air probe")
+
+
+def test_line_ends_of_another_system_do_not_break_it(sheet: TestSheet, tmp_path: Path) -> None:
+    """A sheet saved with other line ends is the same sheet."""
+    path = tmp_path / "sheet.yaml"
+    path.write_bytes(sheet.to_text().replace("\n", "\r\n").encode())
+    assert read_sheet(path).digest == sheet.digest
+
+
+@pytest.mark.parametrize("old_new", [("tolerance_below: 0.05", "tolerance_below: 0.15"), ("site", "none"), ("\n", "\n\n")])
+def test_tampering_is_detected(sheet: TestSheet, old_new: tuple[str, str]) -> None:
+    """Any change of the body is found by the digest on the first line."""
+    head, body = sheet.to_text().split("\n", 1)
+    changed = body.replace(old_new[0], old_new[1], 1)
+    assert changed != body
+    with pytest.raises(SheetError) as caught:
+        read_sheet(f"{head}\n{changed}")
+    problem = caught.value.problems[0]
+    assert "changed after it was frozen" in problem.message
+    assert problem.value == sheet.digest
+
+
+@pytest.mark.parametrize(
+    ("body", "message"),
+    [
+        ("form: something else\n", "not a test sheet of this form"),
+        ("form: commission test sheet 1\n", "lacks something"),
+        ("[1, 2\n", "not YAML"),
+    ],
+)
+def test_other_files_are_refused(body: str, message: str) -> None:
+    """A file with a fitting digest that is no sheet says what is wrong."""
+    with pytest.raises(SheetError, match=message):
+        read_sheet(f"digest: {digest_of(body)}\n{body}")
+
+
+def test_unreadable_files_are_refused(tmp_path: Path) -> None:
+    """A missing file, other bytes than UTF-8 and a text without digest are errors with the file's name."""
+    with pytest.raises(SheetError, match="first line of a test sheet is its digest"):
+        read_sheet("form: x\n")
+    with pytest.raises(SheetError, match="cannot be read") as caught:
+        read_sheet(tmp_path / "missing.yaml")
+    assert caught.value.problems[0].file == str(tmp_path / "missing.yaml")
+    (tmp_path / "bytes.yaml").write_bytes(b"\xff\xfe")
+    with pytest.raises(SheetError, match="not UTF-8"):
+        read_sheet(tmp_path / "bytes.yaml")
+
+
+def test_points_are_the_model_and_between_is_bounded(sheet: TestSheet, cold_room_model: SystemModel) -> None:
+    """At a grid point the sheet is the model; between the points it is within the error that it states itself."""
+    found, reasons = sheet.expectations(at(298.15, 275.15))
+    model = cold_room_model.predict({SINK: 298.15, SOURCE: 275.15}).expected
+    assert reasons == {}
+    for key, expectation in found.items():
+        assert expectation.value == pytest.approx(model[key].value, rel=1e-7, abs=1e-7)
+    between, _ = sheet.expectations(at(299.4, 274.15))
+    exact = cold_room_model.predict({SINK: 299.4, SOURCE: 274.15}).expected
+    for target in sheet.targets_for("expectation"):
+        assert abs(between[target.key].value - exact[target.key].value) <= 1.05 * target.between + 1e-9
+
+
+def test_outside_the_agreed_range_there_is_no_target(sheet: TestSheet) -> None:
+    """A day outside the range has no target, and the reason is said for each."""
+    found, reasons = sheet.expectations(at(311.15, 275.15))
+    assert found == {}
+    assert "outside the range that was agreed" in reasons["suction_pressure"]
+    with pytest.raises(NotCalculatedError, match="outside the range"):
+        sheet.carried(sheet.targets_for("guarantee")[0], at(311.15, 275.15))
+
+
+def test_a_held_condition_moves_along_its_slope(sheet: TestSheet, cold_room_model: SystemModel) -> None:
+    """A humidity that was read and differs a little from the one held moves the target as the model would."""
+    humidity = "heat_source_relative_humidity"
+    moved = {**at(298.15, 275.15), humidity: Measured(humidity, 0.80)}
+    target = sheet.targets_for("guarantee")[0]
+    change = sheet.carried(target, moved).value - sheet.carried(target, at(298.15, 275.15)).value
+    model = [
+        cold_room_model.predict({SINK: 298.15, SOURCE: 275.15, humidity: h}).expected["cooling_capacity"].value
+        for h in (0.80, 0.85)
+    ]
+    # The guarantee stands at the designed humidity, so that only the day's side of the ratio moves.
+    base = cold_room_model.predict({SINK: 305.15, SOURCE: 275.15}).expected["cooling_capacity"].value
+    assert change == pytest.approx(3300.0 * (model[0] - model[1]) / base, abs=1.0, rel=0.1)
+
+
+def test_wrong_ranges_are_refused(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """Unknown conditions, unordered values, no range and too many points are errors that say what is allowed."""
+    with pytest.raises(InputError, match="no such condition") as caught:
+        make_sheet(cold_room, cold_room_model, {"heat_sink_inlet_temperatur": (290.0,)})
+    assert caught.value.problems[0].nearest == SINK
+    with pytest.raises(InputError, match="rising order"):
+        make_sheet(cold_room, cold_room_model, {SINK: (300.0, 290.0)})
+    with pytest.raises(InputError, match="at least one condition"):
+        make_sheet(cold_room, cold_room_model, {})
+    with pytest.raises(InputError, match="too many"):
+        make_sheet(cold_room, cold_room_model, {SINK: grid_of(280.0, 300.0, 0.01)})
+
+
+def test_later_changes_never_move_a_frozen_verdict(
+    sheet: TestSheet, cold_room: LoadedPlant, cold_room_model: SystemModel, tmp_path: Path
+) -> None:
+    """With a sheet the verdict and its limits are the same after guarantee, assumption and rated point have changed;
+    without it they move."""
+    frozen = read_sheet(sheet.to_text())
+    asked, read = visit(cold_room, cold_room_model, {SINK: 298.15})
+    before = judge(cold_room, cold_room_model, asked, read, "test", frozen, since_start=3600.0)
+    changed = (
+        COLD_ROOM.replace("value: 3.3 kW", "value: 4.4 kW")
+        .replace("cooling_capacity: 3.45 kW", "cooling_capacity: 3.60 kW")
+        .replace("    duty: cold_storage", "    assumptions: {suction_line_loss: {value: 2 K, source: measured}}\n    duty: cold_storage")
+    )  # fmt: skip
+    other = write_plant(tmp_path / "changed", changed)
+    other_model = fit(other, "cold-room")
+    after = judge(other, other_model, asked, read, "test", frozen, since_start=3600.0)
+    today = judge(other, other_model, asked, read, "test", None, since_start=3600.0)
+    for old, new in zip(before.guarantees, after.guarantees, strict=True):
+        assert old.decision is not None
+        assert new.decision is not None
+        assert old.frozen
+        assert (old.outcome, old.decision.limit_low) == (new.outcome, new.decision.limit_low)
+        assert old.guaranteed == new.guaranteed
+    assert today.guarantees[0].outcome == "not conforming"
+    assert {k: e.value for k, e in before.expectations.items()} == {k: e.value for k, e in after.expectations.items()}
