@@ -137,3 +137,11 @@ def test_suction_below_the_atmosphere_of_a_mountain_is_judged_there(facts: Facts
     expected = {"design": {"suction_pressure": (0.9e5, 1e3)}}
     here = facts(expected=expected, plant={"altitude": "2000 m"})
     assert not list(low_pressure.below_atmosphere(here))
+
+
+def test_a_start_on_the_coldest_day(facts: Facts) -> None:
+    """R-290 at -10 °C holds 3.45 bar absolute (reference tables), 2.4 bar g: a cut-in of 3 bar g does not close."""
+    (remark,) = low_pressure.cold_start(facts({"controls": {"low_pressure_cut_in": "3 bar g"}}))
+    assert remark.severity == "warning"
+    assert figure(remark, "saturation at the coldest outdoor air").value == pytest.approx(3.45e5, rel=0.005)
+    assert not list(low_pressure.cold_start(facts()))

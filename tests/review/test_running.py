@@ -11,7 +11,7 @@ import pytest
 from commission.review.facts import SystemFacts
 from commission.review.finding import Figure, Remark
 from commission.review.rules import duties, envelope, freezing, low_pressure, missing, people, stores
-from commission.safety import charge_limits, substance_of
+from commission.safety import charge_limits, safety_figures, substance_of
 
 Facts = Callable[..., SystemFacts]
 CELSIUS = 273.15
@@ -263,6 +263,11 @@ def with_spaces(facts: SystemFacts) -> SystemFacts:
     return replace(facts, spaces=charge_limits(facts.plant.loaded, facts.id, substance_of(facts.refrigerant)))
 
 
+def with_safety(facts: SystemFacts) -> SystemFacts:
+    """The same facts with charge limits and safety figures."""
+    return replace(with_spaces(facts), safety=safety_figures(facts.plant.loaded, facts.id))
+
+
 @pytest.mark.parametrize(
     ("charge", "detector", "severity"), [("0.4 kg", None, None), ("4 kg", None, "note"), ("4 kg", "no", "warning"),
                                          ("4 kg", "yes", None)]
@@ -286,6 +291,17 @@ def test_a_charge_over_the_limit_of_a_room(facts: Facts) -> None:
     assert lowest is not None
     assert 0.15 <= lowest <= 25.0
     assert not list(duties.charge_over_limit(with_spaces(facts())))
+
+
+def test_leak_detection_by_law(facts: Facts) -> None:
+    """130 kg of R-404A are 510 t CO2 equivalent, over the 500 t of article 6; 100 kg are not; a detector ends it."""
+    big = with_safety(facts({"refrigerant": "R-404A", "charge": "130 kg"}))
+    (remark,) = duties.leak_detection(big)
+    assert remark.severity == "warning"
+    assert figure(remark, "CO₂ equivalent of the charge").value == pytest.approx(130 * 3922, rel=1e-3)
+    assert not list(duties.leak_detection(with_safety(facts({"refrigerant": "R-404A", "charge": "100 kg"}))))
+    watched = facts({"refrigerant": "R-404A", "charge": "130 kg"}, spaces={"store": {"leak_detector": "yes"}})
+    assert not list(duties.leak_detection(with_safety(watched)))
 
 
 def test_market_dates(facts: Facts) -> None:

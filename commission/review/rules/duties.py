@@ -38,6 +38,32 @@ def charge_over_limit(facts: SystemFacts) -> Iterator[Remark]:
         )
 
 
+def leak_detection(facts: SystemFacts) -> Iterator[Remark]:
+    """A charge from which the law asks for a leakage detection system, and none is written in any space.
+
+    Source: EU 2024/573 article 6 (from memory; threshold `leak_detection_from`, CO2 equivalent).
+    """
+    figure = facts.safety_figure("co2_equivalent")
+    entry = facts.plant.threshold("leak_detection_from")
+    plant = facts.plant.loaded.plant
+    if plant.plant.rules.refrigerant_law != "EU 2024/573" or figure is None or figure.value < entry.value:
+        return
+    if any(plant.spaces[space.space_id].leak_detector for space in facts.spaces):
+        return
+    yield Remark(
+        "warning",
+        facts.path("charge"),
+        f"The law asks for a leakage detection system on {facts.title}, and none is written.",
+        (
+            facts.plant.figure(figure.title, figure.value, Kind.MASS, 0),
+            facts.plant.figure("duty from", entry.value, Kind.MASS, 0),
+        ),
+        "Fit one that calls the operator and have it checked every 12 months; write leak_detector under the space.",
+        entry.source,
+        entry.mark,
+    )
+
+
 def law_dates(facts: SystemFacts) -> Iterator[Remark]:
     """Dates after which new equipment of this kind with this refrigerant may no longer be placed on the market.
 

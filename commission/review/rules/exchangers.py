@@ -126,9 +126,9 @@ CROSSING = (
 def cooler_beyond_its_air(facts: SystemFacts) -> Iterator[Remark]:
     """A catalogue rating of an air cooler that asks more of its air flow than saturated air at coil temperature gives.
 
-    Source: first and second law: no air leaves colder than the refrigerant, so the heat is at most the mass flow times
-    the fall of enthalpy to saturated air at the evaporating temperature (Braun, Klein & Mitchell 1989). Dry air density
-    and enthalpy at the barometric pressure of the site.
+    Source: first and second law: no air leaves colder than the refrigerant, so the heat is at most the mass flow of dry
+    air times the fall of enthalpy to saturated air at the evaporating temperature (Braun, Klein & Mitchell 1989), less
+    the enthalpy that the condensate, or the ice, takes along.
     """
     from commission.properties import moist_air
 
@@ -139,8 +139,18 @@ def cooler_beyond_its_air(facts: SystemFacts) -> Iterator[Remark]:
     humidity = 1.0 if medium.relative_humidity is None else medium.relative_humidity
     air = moist_air(rating.air_on, pressure, relative_humidity=humidity)
     coil = moist_air(rating.air_on - rating.temperature_difference, pressure, relative_humidity=1.0)
-    most = medium.flow * air.density * (air.h - coil.h)
+    removed = (air.W - coil.W) * enthalpy_of_water(rating.air_on - rating.temperature_difference)
+    most = medium.flow * air.density * (air.h - coil.h - removed)
     yield from _effectiveness(facts, "evaporator", rating.capacity, most, medium.flow)
+
+
+def enthalpy_of_water(temperature: float) -> float:
+    """Enthalpy in J/kg of liquid water, or of ice below 0 °C, at `temperature` in K, counted from liquid at 0 °C.
+
+    4.19 kJ/(kg K) for water; -333.4 + 2.1 t kJ/kg for ice (ASHRAE Handbook Fundamentals, psychrometrics).
+    """
+    t = temperature - 273.15
+    return 4190.0 * t if t >= 0 else -333.4e3 + 2100.0 * t
 
 
 def condenser_beyond_its_air(facts: SystemFacts) -> Iterator[Remark]:

@@ -72,6 +72,35 @@ def never_cuts_in(facts: SystemFacts) -> Iterator[Remark]:
     )
 
 
+def cold_start(facts: SystemFacts) -> Iterator[Remark]:
+    """A cut-in above saturation at the coldest day, with the receiver or condenser outdoors.
+
+    Source: after a stop in winter all liquid lies in the cold part outdoors, and its saturation pressure is all that
+    drives it to the low side; below the cut-in the machine does not start.
+    """
+    setting, fluid = facts.system.controls.low_pressure_cut_in, facts.refrigerant
+    winter = facts.plant.loaded.plant.plant.climate.winter_dry_bulb
+    place = facts.plant.loaded.plant.spaces.get(facts.system.spaces.condensing_unit or "")
+    if setting is None or fluid is None or winter is None or place is None or not place.outdoors:
+        return
+    if facts.system.duty != "cold_storage" or winter >= fluid.T_critical:
+        return
+    cut_in, driving = facts.absolute(setting), fluid.bubble(winter).p
+    if cut_in < driving:
+        return
+    yield Remark(
+        "warning",
+        facts.path("controls", "low_pressure_cut_in"),
+        f"{facts.title} may not start on the coldest day: its low-pressure cut-in lies above saturation outdoors.",
+        (
+            facts.plant.figure("low-pressure cut-in", cut_in, Kind.PRESSURE),
+            facts.plant.figure("saturation at the coldest outdoor air", driving, Kind.PRESSURE),
+            facts.plant.figure("coldest day of the site", winter, Kind.TEMPERATURE),
+        ),
+        "Set the cut-in lower, or find out what keeps the receiver warm or bridges the cut-in at a start.",
+    )
+
+
 def below_atmosphere(facts: SystemFacts) -> Iterator[Remark]:
     """A suction pressure expected below the barometric pressure of the site.
 
