@@ -28,9 +28,9 @@ class ChecklistError(InputError):
 
 @dataclass(frozen=True, slots=True)
 class Template:
-    """A text with its filled-in expressions: literal parts and expressions in turn."""
+    """A text with its expressions, in turn; an inner template is left out where one of its values is not known."""
 
-    parts: tuple[str | Expression, ...]
+    parts: tuple[str | Expression | Template, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -271,13 +271,28 @@ def _at(error: ExpressionError, positions: Positions, path: tuple[str | int, ...
 
 
 def _template(text: str, positions: Positions, path: tuple[str | int, ...]) -> tuple[Template, list[Problem]]:
-    """A text whose parts in braces are expressions."""
-    parts: list[str | Expression] = []
+    """A text whose parts in braces are expressions, and whose parts in double square brackets can be left out."""
+    if text.count("[[") != text.count("]]"):
+        return Template((text,)), [positions.problem(path, "double square brackets are not closed")]
+    parts: list[str | Expression | Template] = []
+    problems: list[Problem] = []
+    for index, piece in enumerate(re.split(r"\[\[|\]\]", text)):
+        inner, found = _pieces(piece, positions, path)
+        problems += found
+        parts += [Template(tuple(inner))] if index % 2 else inner
+    return Template(tuple(parts)), problems
+
+
+def _pieces(
+    text: str, positions: Positions, path: tuple[str | int, ...]
+) -> tuple[list[str | Expression | Template], list[Problem]]:
+    """Literal text and expressions of a text without optional parts."""
+    parts: list[str | Expression | Template] = []
     problems: list[Problem] = []
     try:
         pieces = list(string.Formatter().parse(text))
     except ValueError:
-        return Template((text,)), [positions.problem(path, "a brace is not closed; write {{ for a brace itself")]
+        return [text], [positions.problem(path, "a brace is not closed; write {{ for a brace itself")]
     for literal, inner, form, conversion in pieces:
         if literal:
             parts.append(literal)
@@ -292,7 +307,7 @@ def _template(text: str, positions: Positions, path: tuple[str | int, ...]) -> t
             parts.append(read_expression(inner, names()))
         except ExpressionError as error:
             problems.append(_at(error, positions, path))
-    return Template(tuple(parts)), problems
+    return parts, problems
 
 
 def _bounds(

@@ -48,6 +48,7 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "sink.liquid": ("yes/no", "heat is given to a liquid", ()),
         "source.antifreeze": ("yes/no", "the liquid that heat is taken from holds glycol", ()),
         "sink.antifreeze": ("yes/no", "the liquid that heat is given to holds glycol", ()),
+        "sink.tower": ("yes/no", "heat goes to the air over a cooling tower or an evaporative condenser", ()),
         "source.outdoors": ("yes/no", "heat is taken from outdoor air", ()),
         "piped.on_site": ("yes/no", "refrigerant pipes are joined on site: not factory sealed", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),
@@ -68,6 +69,10 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.charge_limits": ("text", "lowest charge limit and its document, by space", ()),
         "words.owner": ("text", "the owner and how to reach them", ()),
         "words.contractor": ("text", "the contractor and how to reach them", ()),
+        "words.levels": ("text", "levels in the air that matter to people", ()),
+        "words.highest_discharge": ("text", "highest discharge temperature by common practice", ()),
+        "only.flammable": ("text", "nothing, but known only for a flammable refrigerant: keeps [[a sentence]]", ()),
+        "only.hydrocarbon": ("text", "nothing, but known only for a hydrocarbon: keeps [[a sentence]]", ()),
         "words.records": ("text", "what the refrigerant law wants recorded", ()),
     }
 )

@@ -8,13 +8,14 @@ from typing import TYPE_CHECKING, Any
 
 from commission.errors import CommissionError
 from commission.quantities import NOMENCLATURE, Kind
-from commission.safety import charge_limits, label_text, limit_order, strength_test_steps
+from commission.safety import charge_limits, hazards, label_text, limit_order, strength_test_steps
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
     from commission.description.model import Medium
 
 GLYCOL = ("propylene glycol", "ethylene glycol")
+HYDROCARBONS = {"R-290", "R-600a", "R-1270", "R-170", "R-600"}
 EU = "EU 2024/573"
 
 
@@ -32,6 +33,31 @@ def _outdoors(facts: Facts) -> bool:
     source = facts.system.heat_source
     space = facts.loaded.plant.spaces.get(source.space or "")
     return source.medium == "air" and space is not None and space.outdoors
+
+
+def _tower(facts: Facts) -> bool | None:
+    """Known where the condenser is evaporative or a wet bulb of the sink is stated; a chiller on water may have one."""
+    system = facts.system
+    if system.condenser.type == "evaporative":
+        return True
+    stated = [system.design, *system.rated_points]
+    if any(point is not None and point.heat_sink_wet_bulb is not None for point in stated):
+        return True
+    return None if system.heat_sink.medium == "water" and system.duty == "liquid_cooling" else False
+
+
+def _levels(facts: Facts) -> str | None:
+    shown = [f"{level.ppm:.0f} ppm {level.what} ({level.says})" for level in hazards(facts.substance).people]
+    return "; ".join(shown) or None
+
+
+def _highest_discharge(facts: Facts) -> str | None:
+    components = facts.substance.components
+    if components == ("R-744",):
+        return None
+    if components == ("R-717",):
+        return "reciprocating ammonia compressors stay below 120 to 140 °C, oil-flooded screws at 80 to 90 °C"
+    return "with polyolester oil never above 105 to 110 °C"
 
 
 def _three_phase(facts: Facts) -> bool | None:
@@ -73,7 +99,7 @@ def _short(facts: Facts, key: str) -> str:
     return NOMENCLATURE[key].label.lower()
 
 
-def _instruments(facts: Facts) -> str | None:
+def _instruments(facts: Facts) -> str:
     wanted = set(facts.system.measured_with.values())
     listed = facts.loaded.plant.instruments
     chosen = {key: item for key, item in listed.items() if key in wanted} or listed
@@ -85,7 +111,7 @@ def _instruments(facts: Facts) -> str | None:
             else "no calibration stated"
         )
         texts.append(f"{key} ({item.serial or 'no serial stated'}, {until})")
-    return "; ".join(texts) or None
+    return "; ".join(texts) or "No instrument is described; without serial and calibration a report is void."
 
 
 def _steps(facts: Facts) -> str | None:
@@ -108,7 +134,7 @@ def _label(facts: Facts) -> str:
     return "; ".join(label_text(law, facts.substance, facts.system.charge, facts.system.sealed))
 
 
-def _guarantees(facts: Facts) -> str | None:
+def _guarantees(facts: Facts) -> str:
     texts = []
     for promise in facts.system.guarantee:
         at = [
@@ -118,7 +144,7 @@ def _guarantees(facts: Facts) -> str | None:
         ]
         label = NOMENCLATURE[promise.quantity].label.lower()
         texts.append(f"{label} {promise.value} at {', '.join(at)}, decided by the {promise.decision} rule")
-    return "; ".join(texts) or None
+    return "; ".join(texts) or "nothing is guaranteed; the sheet shows deviations from the expected values, no verdict"
 
 
 def _charge_limits(facts: Facts) -> str | None:
@@ -185,6 +211,7 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "sink.liquid": lambda f, _: f.system.heat_sink.medium != "air",
         "source.antifreeze": lambda f, _: _antifreeze(f.system.heat_source),
         "sink.antifreeze": lambda f, _: _antifreeze(f.system.heat_sink),
+        "sink.tower": lambda f, _: _tower(f),
         "source.outdoors": lambda f, _: _outdoors(f),
         "piped.on_site": lambda f, _: not f.system.sealed,
         "drive.three_phase": lambda f, _: _three_phase(f),
@@ -201,6 +228,10 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.charge_limits": lambda f, _: _charge_limits(f),
         "words.owner": _person("owner"),
         "words.contractor": _person("contractor"),
+        "words.levels": lambda f, _: _levels(f),
+        "words.highest_discharge": lambda f, _: _highest_discharge(f),
+        "only.flammable": lambda f, _: "" if f.substance.flammable else None,
+        "only.hydrocarbon": lambda f, _: "" if set(f.substance.components) <= HYDROCARBONS else None,
         "words.records": lambda f, _: _records(f),
     }
 )

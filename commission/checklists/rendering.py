@@ -16,6 +16,7 @@ if TYPE_CHECKING:
 VACUUM = 5000.0
 """Below this, in Pa absolute, a pressure is a vacuum and shown so: a gauge pressure would say nothing."""
 MICRON = 0.133322387415
+STATED_NOWHERE = "not stated"
 COVERAGE = 2.0
 """Coverage factor of the band of an expected value, about 95 %."""
 
@@ -58,16 +59,33 @@ def show(value: float, kind: Kind, display: Display) -> str:
 
 def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
     """The text with its values, and the calculated numbers in it; what is not known says so and leaves room."""
+    from commission.checklists.library import Template
+
     parts: list[str] = []
     explained: list[Explained] = []
     for part in template.parts:
         if isinstance(part, str):
             parts.append(part)
             continue
+        if isinstance(part, Template):
+            if _all_known(part, facts):
+                inner, more = fill(part, facts)
+                parts.append(inner)
+                explained += more
+            continue
         value = evaluate(part, facts.lookup, facts.loaded.barometric_pressure)
         explained += value.explained
         parts.append(_word(value, facts.display))
     return "".join(parts), tuple(explained)
+
+
+def _all_known(template: Template, facts: Facts) -> bool:
+    barometric_pressure = facts.loaded.barometric_pressure
+    return all(
+        evaluate(part, facts.lookup, barometric_pressure).known
+        for part in template.parts
+        if isinstance(part, Expression)
+    )
 
 
 def _word(value: Value, display: Display) -> str:
@@ -86,12 +104,12 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
         return None
     kind = _kind(item)
     if kind is None:
-        return Target(says or "")
+        return Target(says) if says else None
     worked = {key: _work(bound, kind, facts) for key, bound in item.must_read.items() if key != "within"}
     explained = tuple(e for value in worked.values() for e in value.explained)
     missing = next((v.missing for v in worked.values() if not v.known), None)
     if missing is not None:
-        text = f"not calculated: {missing}"
+        text = missing if missing.startswith(STATED_NOWHERE) else f"not calculated: {missing}"
         return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
     within = item.must_read.get("within")
     numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}

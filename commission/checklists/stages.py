@@ -148,7 +148,9 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
     figures: list[Explained] = []
     texts: dict[str, str] = {}
     for key, template in item.texts.items():
-        texts[key], used = fill(template, facts)
+        filled, used = fill(template, facts)
+        if filled.strip():
+            texts[key] = filled.strip()
         figures += used
     reading = target(item, texts.get("says"), facts)
     if reading is not None:

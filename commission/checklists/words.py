@@ -169,8 +169,8 @@ def _described(facts: Facts, head: str, path: str, kind: Any) -> Value:
         "condensing_space": facts.space("condensing_unit"),
     }
     node = roots[head]
-    where = {"system": f"systems.{facts.system_id}"}.get(head, head)
-    missing = f"not stated: write {where}.{path}"
+    where = path if head == "system" else f"{head}.{path}"
+    missing = f"not stated: {where}"
     for part in path.split("."):
         if node is None:
             return Value(kind, None, missing)

@@ -121,9 +121,7 @@ def _design_figure(
         return
     if pressure is None:
         where = f"{temperature - 273.15:.0f} °C"
-        out.refuse(
-            f"{fluid.name} does not condense at {where}: PS follows the highest in operation", key
-        )
+        out.refuse(f"{fluid.name} does not condense at {where}: PS follows the highest in operation", key)
         return
     inputs = (
         Input("design temperature", temperature, Kind.TEMPERATURE, rule.source),

@@ -215,8 +215,21 @@ def _words(
         "contractor": _person(loaded, "contractor"),
         "effects": " ".join(hazard.effects),
         "levels": f"Levels in the air: {levels}." if levels else "",
-        "emergency_number": TO_FILL,
+        "emergency_number": _emergency_number(loaded),
     }
+
+
+EMERGENCY_NUMBERS = {"EU 2024/573": "112", "US 40 CFR 82 and 84": "911"}
+"""By the law the plant is under: 112 is the European emergency number (Directive (EU) 2018/1972), 911 the one of the US."""
+
+
+def _emergency_number(loaded: LoadedPlant) -> str:
+    """The number of the role `emergency`, else the common number where the law tells the continent."""
+    site = loaded.plant.plant
+    role = site.people.get("emergency")
+    if role is not None and role.phone is not None:
+        return role.phone
+    return EMERGENCY_NUMBERS.get(site.rules.refrigerant_law, TO_FILL)
 
 
 def _person(loaded: LoadedPlant, role: str) -> str:

@@ -117,15 +117,35 @@ def _situation(
         substance=substance,
         access=ACCESS.get(space.occupancy or "", "a"),
         access_stated=space.occupancy is not None,
-        location="II" if unit is not None and unit.outdoors else "I",
+        location=_location(loaded, system, unit),
         below_ground=space.below_ground,
         comfort=system.duty in ("comfort_cooling", "space_heating"),
         commercial=system.duty == "cold_storage",
         sealed=system.sealed,
+        mounting=system.spaces.evaporator_mounting,
         area=space.floor_area,
         volume=volume,
         inputs=inputs,
     )
+
+
+def _location(loaded: LoadedPlant, system: System, unit: Space | None) -> Literal["I", "II", "III"]:
+    """Location class III, II or I of EN 378-1.
+
+    III where every part is outdoors or in a room for authorised persons only that the evaporator does not cool (taken
+    as a machinery room); II where the compressor alone is outdoors or in such a room; else I.
+    """
+    cooled = system.heat_source.space if system.heat_source.medium == "air" else None
+
+    def apart(space_id: str) -> bool:
+        space = loaded.plant.spaces[space_id]
+        return space.outdoors or (space.occupancy == "authorised persons only" and space_id != cooled)
+
+    spaces = reachable_spaces(system)
+    if spaces and all(apart(space_id) for space_id in spaces if space_id in loaded.plant.spaces):
+        return "III"
+    held = system.spaces.condensing_unit
+    return "II" if unit is not None and held is not None and apart(held) else "I"
 
 
 def _outdoors(substance: Substance) -> tuple[str, ...]:

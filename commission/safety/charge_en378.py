@@ -13,6 +13,9 @@ from commission.safety.limits import ChargeLimit, Situation, fact_as_input, know
 from commission.safety.substance import Known
 
 DOCUMENT = "EN 378-1 (ISO 5149-1 alike)"
+ALL_APART = (
+    "no limit by room size: all parts outdoors or in a machinery room, which has ventilation and detectors instead"
+)
 NO_VOLUME = "floor area or height of this space is not stated"
 
 
@@ -29,15 +32,11 @@ def _toxicity(case: Situation) -> ChargeLimit:
     edition = "2016, table C.1"
     rule = f"toxicity, access {case.access}, location {case.location}"
     if case.location in ("III", "IV"):
-        return not_applicable(
-            DOCUMENT, edition, rule, "M", "no toxicity limit with all parts outdoors or in a machinery room"
-        )
+        return not_applicable(DOCUMENT, edition, rule, "M", ALL_APART)
     if case.substance.toxicity == "B" and case.access != "a":
         return _class_b(case, edition, rule)
     if case.substance.toxicity == "A" and case.access != "a" and not case.below_ground:
-        reason = (
-            "no toxicity limit for class A above ground without public access (not so upstairs without exits)"
-        )
+        reason = "no toxicity limit for class A above ground without public access (not so upstairs without exits)"
         return not_applicable(DOCUMENT, edition, rule, "M", reason)
     known = _toxicity_limit(case)
     if known is None:
@@ -74,7 +73,7 @@ def _flammability(case: Situation) -> ChargeLimit:
     if substance.lfl is None:
         return not_applicable(DOCUMENT, edition, rule, "M", "the register has no lower flammability limit")
     if case.location in ("III", "IV"):
-        return not_applicable(DOCUMENT, edition, rule, "M-low", "see the machinery-room and outdoor rows of the table")
+        return _all_apart(case, edition, rule)
     by_room = _comfort(case, edition, rule) if case.comfort else _by_share(case, edition, rule)
     if by_room.value is None or not case.sealed:
         return by_room
@@ -87,6 +86,14 @@ def _flammability(case: Situation) -> ChargeLimit:
     return limit(
         DOCUMENT, edition, f"{rule}, sealed: m1", (by_room.mark, substance.lfl.mark), free, "charge_cap", inputs
     )
+
+
+def _all_apart(case: Situation, edition: str, rule: str) -> ChargeLimit:
+    """Class 3 with all parts outdoors or in a machinery room: a mass by access category, none for c."""
+    if case.substance.flammability != "3" or case.access == "c":
+        return not_applicable(DOCUMENT, edition, rule, "M-low", ALL_APART)
+    cap = fact("class3_a_outdoors" if case.access == "a" else "class3_b_outdoors")
+    return limit(DOCUMENT, edition, rule, (cap.mark,), cap.value, "charge_cap", (fact_as_input(cap),))
 
 
 def _factor(case: Situation) -> float:
@@ -109,12 +116,16 @@ def _comfort(case: Situation, edition: str, rule: str) -> ChargeLimit:
     assert lfl is not None
     if case.area is None:
         return not_applicable(DOCUMENT, edition, rule, "V1", "the floor area of this space is not stated")
-    height = fact("release_height_floor")
+    height = case.release_height
     free = flammable_cap(lfl.value, fact("m1_volume").value, _factor(case))
     kilograms = max(free, comfort_charge(lfl.value, height.value, case.area))
     inputs = (*case.inputs, known_input("LFL", lfl), fact_as_input(fact("comfort_factor")), fact_as_input(height))
-    rule = f"{rule}, human comfort, C.2.1, unit taken at floor height (the strictest); m1 is free"
+    rule = f"{rule}, human comfort, C.2.1, {_mounted(case)}; m1 is free"
     return _capped(case, edition, rule, kilograms, inputs, ("V1", lfl.mark))
+
+
+def _mounted(case: Situation) -> str:
+    return f"{case.mounting} unit" if case.mounting else "mounting not stated, taken at the floor (the strictest)"
 
 
 def _capped(
@@ -156,6 +167,8 @@ def _practical(case: Situation) -> ChargeLimit:
     known = case.substance.practical_limit
     if known is None:
         return not_applicable(document, edition, rule, "M", "the register has no practical limit")
+    if case.location in ("III", "IV"):
+        return not_applicable(document, edition, rule, "V1", ALL_APART)
     if case.volume is None:
         return not_applicable(document, edition, rule, "V1", NO_VOLUME)
     if case.substance.toxicity == "B" and case.access != "a":

@@ -14,6 +14,10 @@ def ashrae15_limit(case: Situation) -> ChargeLimit:
     rule = "concentration limit RCL times room volume, high-probability system"
     if case.substance.rcl is None:
         return not_applicable(document, edition, rule, "M", "the register has no RCL")
+    if case.location in ("III", "IV"):
+        return not_applicable(
+            document, edition, rule, "M", "a machinery room built to the standard, or outdoors, instead"
+        )
     if case.volume is None:
         return not_applicable(document, edition, rule, "M", "floor area or height of this space is not stated")
     if case.substance.flammability == "3":
@@ -57,7 +61,7 @@ def commercial_limit(case: Situation) -> ChargeLimit:
 def heat_pump_limit(case: Situation) -> ChargeLimit:
     """Air conditioners and heat pumps: m_max by floor area, m1 free, not over m2; unit taken at floor height."""
     document, edition = "IEC 60335-2-40", "editions 5 and 6, annex GG"
-    rule = "m = 2.5 LFL^(5/4) h0 √A, unit taken at floor height, m1 free, not over m2"
+    rule = "m = 2.5 LFL^(5/4) h0 √A by mounting height, m1 free, not over m2"
     substance = case.substance
     if not case.comfort:
         return not_applicable(document, edition, rule, "V1", "not an air conditioner or heat pump for rooms")
@@ -68,7 +72,7 @@ def heat_pump_limit(case: Situation) -> ChargeLimit:
     mild = substance.flammability == "2L"
     m1 = fact("heat_pump_a2l_m1_volume" if mild else "m1_volume")
     m2 = fact("heat_pump_a2l_m2_volume" if mild else "m2_volume")
-    height = fact("release_height_floor")
+    height = case.release_height
     lfl = substance.lfl.value
     by_room = comfort_charge(lfl, height.value, case.area)
     kilograms = min(max(by_room, flammable_cap(lfl, m1.value)), flammable_cap(lfl, m2.value))

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from commission.quantities import Explained, Input, Kind
-from commission.safety.facts import Fact, weaker
+from commission.safety.facts import Fact, fact, weaker
 from commission.safety.substance import Known, Substance
 
 
@@ -22,9 +22,15 @@ class Situation:
     comfort: bool
     commercial: bool
     sealed: bool
+    mounting: Literal["floor", "window", "wall", "ceiling"] | None
     area: float | None
     volume: float | None
     inputs: tuple[Input, ...] = ()
+
+    @property
+    def release_height(self) -> Fact:
+        """Height at which a leak enters the room; a unit whose mounting is not stated counts as on the floor."""
+        return fact(f"release_height_{self.mounting or 'floor'}")
 
 
 @dataclass(frozen=True, slots=True)

@@ -92,7 +92,7 @@ def _nitrogen_figure(out: Collector, lowest: Stamped) -> None:
     try:
         warmer = nitrogen_pressure(lowest.absolute, REFERENCE_TEMPERATURE, REFERENCE_TEMPERATURE + 1)
     except ValueError:
-        out.refuse("the test pressure is above 60 bar: use tables of nitrogen", "nitrogen_change_per_kelvin")
+        out.refuse("the test pressure is above 150 bar: use tables of nitrogen", "nitrogen_change_per_kelvin")
         return
     out.add(
         "nitrogen_change_per_kelvin",
