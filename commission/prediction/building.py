@@ -151,12 +151,14 @@ def fans_of(facts: Facts, a: Mapping[str, float], source_heat: float, sink_heat:
         stated = system.evaporator.fan_power
         source = stated if stated is not None else a["evaporator_fan_share"] * source_heat
     elif includes is not None and source_counted:
-        source = a["pump_share"] * source_heat
+        pump = system.heat_source.pump_power
+        source = pump if pump is not None else a["pump_share"] * source_heat
     if sink_air:
         stated = system.condenser.fan_power
         sink = stated if stated is not None else a["condenser_fan_share"] * sink_heat
     elif includes is not None and sink_counted:
-        sink = a["pump_share"] * sink_heat
+        pump = system.heat_sink.pump_power
+        sink = pump if pump is not None else a["pump_share"] * sink_heat
     return Fans(source, sink, source_counted, sink_counted)
 
 
@@ -180,7 +182,8 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     stated_superheat = system.expansion.superheat if system.expansion else None
     superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
     line, surroundings = suction_line(facts, a, rated, superheat)
-    displacement = system.compressor.displacement
+    one = system.compressor.displacement
+    displacement = one * system.compressor.count if one is not None else None
     compressor = Compressor(
         displacement=displacement or levels.swept_flow,
         volumetric_level=levels.swept_flow / displacement if displacement else 1.0,

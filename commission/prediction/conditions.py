@@ -33,7 +33,7 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     rated = plan.rated
     axes = [_temperature_axis(facts, side, *_design(facts, plan, case, side)) for side in ("heat_source", "heat_sink")]
     if facts.source_liquid is None:
-        wet = plan.source_humidity
+        wet = case.conditions.get("heat_source_relative_humidity", plan.source_humidity)
         axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
     for key, flow in (("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)):
         axes.append(ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow))
@@ -44,11 +44,12 @@ def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float
     """Key and rated value of one medium's temperature: of the design where it is stated, else of the rated point."""
     inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
     design = facts.system.design
-    for key in (inlet, outlet):
+    first, second = (outlet, inlet) if outlet in case.conditions else (inlet, outlet)
+    for key in (first, second):
         stated = getattr(design, key) if design is not None else None
         if stated is not None and (key == inlet or outlet in case.conditions):
             return key, stated
-    if inlet not in case.conditions and outlet in case.conditions:
+    if outlet in case.conditions:
         return outlet, case.conditions[outlet]
     return inlet, plan.rated.source_temperature if side == "heat_source" else plan.rated.sink_temperature
 
@@ -80,7 +81,7 @@ def complete(
     """
     given = dict(given or {})
     problems = []
-    known = {**axes, **{_other_end(key): axis for key, axis in axes.items() if _other_end(key) != key}}
+    known = {*axes, *(_other_end(key) for key in axes)}
     for key, value in given.items():
         if key not in known:
             problems.append(

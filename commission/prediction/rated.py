@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 
-from commission.description.model import CondensingUnit, RatedPoint
+from commission.description import Conditions, RatedPoint
+from commission.description.model import CondensingUnit
 from commission.errors import NotCalculatedError
 from commission.machine import Balance, Media
 from commission.prediction.building import (
@@ -18,6 +19,7 @@ from commission.prediction.building import (
     stream,
 )
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
+from commission.properties import moist_air
 
 MARGIN = 0.015
 """Relative standard uncertainty of one figure of a table with many points, until the scatter tells a better one:
@@ -81,29 +83,70 @@ def cases_of(facts: Facts) -> tuple[Case, ...]:
 
 
 def _system_case(facts: Facts, number: int, point: RatedPoint) -> Case:
-    origin = facts.origin(f"rated_points.{number}")
-    conditions = {k: v for k, v in _conditions(point).items() if v is not None}
+    path = f"rated_points.{number}"
+    conditions = {key: value for key in Conditions.model_fields if (value := getattr(point, key)) is not None}
+    for side in ("heat_source", "heat_sink"):
+        if not {f"{side}_inlet_temperature", f"{side}_outlet_temperature"} & set(conditions):
+            raise NotCalculatedError(
+                f"the rated point at {facts.origin(path)} does not say its {side}_inlet_temperature"
+            )
+    data = _stated(facts, path, point)
+    _one_temperature_each(facts, conditions, {d.of: d.value for d in data})
+    _as_relative_humidity(facts, conditions)
     source = conditions.get("heat_source_inlet_temperature", conditions.get("heat_source_outlet_temperature"))
     sink = conditions.get("heat_sink_inlet_temperature", conditions.get("heat_sink_outlet_temperature"))
-    if source is None or sink is None:
-        missing = "heat_source_inlet_temperature" if source is None else "heat_sink_inlet_temperature"
-        raise NotCalculatedError(f"the rated point at {origin} does not say its {missing}")
-    data = []
-    for key in ("cooling_capacity", "heating_capacity", "power_input"):
-        value = getattr(point, key)
-        if value is not None:
-            data.append(Datum(key, value, MARGIN * value, facts.origin(f"rated_points.{number}.{key}")))
+    assert source is not None
+    assert sink is not None
+    return Case(source, sink, conditions, data, facts.origin(path))
+
+
+def _stated(facts: Facts, path: str, point: RatedPoint) -> tuple[Datum, ...]:
+    """Capacities and power of a rated point; a COP that is stated in place of the power gives the power."""
+    values = {key: getattr(point, key) for key in ("cooling_capacity", "heating_capacity", "power_input")}
+    origin = {key: f"{path}.{key}" for key in values}
+    for capacity, cop in (("cooling_capacity", point.cooling_cop), ("heating_capacity", point.heating_cop)):
+        if cop is not None and values["power_input"] is None and values[capacity] is not None:
+            values["power_input"] = values[capacity] / cop
+            origin["power_input"] = f"{path}.{capacity.replace('capacity', 'cop')}"
+    if values["cooling_capacity"] is not None and point.capacity_is == "net":
+        values["cooling_capacity"] += facts.system.evaporator.fan_power or 0.0
+    data = [Datum(key, v, MARGIN * v, facts.origin(origin[key])) for key, v in values.items() if v is not None]
     for key in ("evaporating_temperature", "condensing_temperature"):
         value = getattr(point, key)
         if value is not None:
-            data.append(Datum(key, value, 0.3, facts.origin(f"rated_points.{number}.{key}")))
-    return Case(source, sink, conditions, tuple(data), origin)
+            data.append(Datum(key, value, 0.3, facts.origin(f"{path}.{key}")))
+    return tuple(data)
 
 
-def _conditions(point: object) -> dict[str, float | None]:
-    from commission.description.model import Conditions
+def _one_temperature_each(facts: Facts, conditions: dict[str, float], stated: Mapping[str, float]) -> None:
+    """Where inlet and outlet of a medium are both stated, its flow follows from the heat, and one of them is kept:
+    the outlet of the sink of a heating plant (its flow temperature), the inlet elsewhere."""
+    heating = stated.get("heating_capacity")
+    cooling = stated.get("cooling_capacity")
+    power = stated.get("power_input", 0.0)
+    heats = {
+        "heat_source": cooling if cooling is not None else (heating or 0.0) - power,
+        "heat_sink": heating if heating is not None else (cooling or 0.0) + power,
+    }
+    for side, medium in (("heat_source", facts.source_liquid), ("heat_sink", facts.sink_liquid)):
+        inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
+        if not (inlet in conditions and outlet in conditions):
+            continue
+        change = abs(conditions[inlet] - conditions[outlet])
+        dry = medium is not None or side == "heat_sink"
+        if f"{side}_flow" not in conditions and dry and change > 0 and heats[side] > 0:
+            flow = flow_for(heats[side], change, conditions[inlet], medium, SINK_HUMIDITY, facts.pressure)
+            conditions[f"{side}_flow"] = flow
+        heats_water = facts.system.duty in ("space_heating", "water_heating") and side == "heat_sink"
+        del conditions[inlet if heats_water and medium is not None else outlet]
 
-    return {key: getattr(point, key) for key in Conditions.model_fields}
+
+def _as_relative_humidity(facts: Facts, conditions: dict[str, float]) -> None:
+    """A wet bulb of the source air becomes its relative humidity."""
+    wet = conditions.pop("heat_source_wet_bulb", None)
+    dry = conditions.get("heat_source_inlet_temperature")
+    if wet is not None and dry is not None and facts.source_liquid is None:
+        conditions["heat_source_relative_humidity"] = moist_air(dry, facts.pressure, wet_bulb=wet).relative_humidity
 
 
 def _unit_cases(facts: Facts, unit: CondensingUnit) -> tuple[Case, ...]:
@@ -167,7 +210,7 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
     if cooling <= 0:
         raise NotCalculatedError(f"at {case.origin} more power goes in than heat comes out: no heat is left to take up")
     source_temperature, sink_temperature = _temperatures(facts, a, case)
-    wet = humidity(facts, a)
+    wet = case.conditions.get("heat_source_relative_humidity", humidity(facts, a))
     source_flow = case.conditions.get("heat_source_flow", facts.system.heat_source.flow)
     if source_flow is None:
         change = a["source_temperature_change"]
