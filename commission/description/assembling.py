@@ -70,6 +70,18 @@ def file_name(text: Any) -> str | None:
         return None
 
 
+def within(folder: Path, name: str) -> Path:
+    """The path of a named file, which no symbolic link may lead out of the folder.
+
+    Raises:
+        DescriptionError: it leads out.
+    """
+    path = folder / name
+    if path.exists() and not path.resolve().is_relative_to(folder.resolve()):
+        raise DescriptionError(Problem("this file leads outside the folder of the plant", file=name))
+    return path
+
+
 def _include(whole: Assembled) -> list[Problem]:
     """Merge the included files; a name that is no file name is left to the check of shape."""
     unread: list[Problem] = []
@@ -84,7 +96,7 @@ def _include(whole: Assembled) -> list[Problem]:
             )
             continue
         try:
-            read = read_yaml(whole.folder / name, name)
+            read = read_yaml(within(whole.folder, name), name)
         except DescriptionError as error:
             unread += [_named(p, whole, ("include", number)) for p in error.problems]
             continue
@@ -158,7 +170,7 @@ def _read_tables(whole: Assembled, systems: dict[str, Any]) -> list[Problem]:
                 )
                 continue
             try:
-                table = read_table(whole.folder / name, name)
+                table = read_table(within(whole.folder, name), name)
             except DescriptionError as error:
                 unread += [_named(p, whole, (*path, "file")) for p in error.problems]
                 continue

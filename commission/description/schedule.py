@@ -154,12 +154,12 @@ def _plain(heading: str) -> str:
 def _columns(table: Table, sheet: _Sheet) -> tuple[list[Column], int]:
     """The meaning of each column, and how many rows below the headings are a row of units.
 
-    A heading that is nearly a known one is a problem; any other unknown column is kept as notes.
+    A heading that is nearly a known one is a problem; any other unknown column is kept as notes. Two columns may mean
+    the same (air and water side of different machines), but not in one row.
     """
     known = columns_by_heading()
     units = _unit_row(table)
     found: list[Column] = []
-    seen: dict[str, str] = {}
     for number, cell in enumerate(table.heading):
         match = _BRACKETS.fullmatch(cell.text)
         word, unit = (match[1], match[2].strip()) if match else (cell.text, "")
@@ -172,11 +172,6 @@ def _columns(table: Table, sheet: _Sheet) -> tuple[list[Column], int]:
                 allowed = ", ".join(headings[0] for headings in _book().values())
                 sheet.problems.append(_at(cell, "this heading is not known", allowed=allowed, near=near))
             key = "note"
-        elif key in seen:
-            sheet.problems.append(_at(cell, f"this means the same as the heading {seen[key]!r}"))
-            key = "note"
-        else:
-            seen[key] = cell.text
         sheet.weigh(unit)
         found.append(Column(key, cell, unit))
     return found, 1 if units else 0
@@ -231,8 +226,14 @@ def _row(cells: list[tuple[Column, Cell]], row: tuple[Cell, ...], sheet: _Sheet)
     sheet.positions.marks[path] = Mark(cell.place, cell.place, None)
     system: dict[str, Any] = {}
     sheet.systems[identity] = system
+    taken: dict[str, str] = {}
     for column, one in cells:
         sheet.headings[one.place.line, one.place.column] = column.heading.text
+        other = taken.setdefault(column.key, column.heading.text)
+        if other != column.heading.text and column.key != "note":
+            message = f"this says the same as the column {shorten(other, 60)!r}; fill in one of them"
+            sheet.problems.append(_at(one, message))
+            continue
         text = _text(column, one.text)
         if column.key == "note":
             sheet.notes.setdefault(identity, []).append(f"{column.heading.text}: {text}")
@@ -241,7 +242,8 @@ def _row(cells: list[tuple[Column, Cell]], row: tuple[Cell, ...], sheet: _Sheet)
             sheet.weigh(text)
         _put(sheet, system, path, column.key, text, one)
     duty = system.get("duty", "")
-    for side, medium in zip(("heat_source", "heat_sink"), _MEDIA_OF_DUTY.get(duty, ()), strict=False):
+    media = _MEDIA_OF_DUTY.get(duty, ("air", "air"))  # an unknown duty is a problem of its own
+    for side, medium in zip(("heat_source", "heat_sink"), media, strict=True):
         system[side] = {"medium": medium, **system.get(side, {})}
 
 
