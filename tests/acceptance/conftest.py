@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from pathlib import Path
 
 import pytest
@@ -113,12 +112,12 @@ def chiller(tmp_path_factory: pytest.TempPathFactory) -> LoadedPlant:
 
 
 @pytest.fixture(scope="session")
-def cold_room_model(cold_room: LoadedPlant) -> Iterator[SystemModel]:
+def cold_room_model(cold_room: LoadedPlant) -> SystemModel:
     """The fitted cold room."""
-    yield fit(cold_room, "cold-room")
+    return fit(cold_room, "cold-room")
 
 
 @pytest.fixture(scope="session")
-def chiller_model(chiller: LoadedPlant) -> Iterator[SystemModel]:
+def chiller_model(chiller: LoadedPlant) -> SystemModel:
     """The fitted chiller."""
-    yield fit(chiller, "chiller")
+    return fit(chiller, "chiller")

@@ -84,9 +84,7 @@ def test_simultaneous_columns_are_checked() -> None:
     assert r == [[1.0, 0.0], [0.0, pytest.approx(1.0)]]
 
 
-@given(
-    st.floats(200.0, 350.0), st.floats(0.01, 2.0), st.floats(1.0, 50.0), st.floats(0.001, 0.3), st.floats(0.01, 0.5)
-)
+@given(st.floats(200.0, 350.0), st.floats(0.01, 2.0), st.floats(1.0, 50.0), st.floats(0.001, 0.3), st.floats(0.01, 0.5))
 def test_agrees_with_an_independent_library(t: float, ut: float, x: float, ux: float, common: float) -> None:
     """Value and uncertainty of a non-linear function with a shared cause agree with the uncertainties library."""
     shared = Component("shared", common, cause="shared")

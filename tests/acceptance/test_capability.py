@@ -33,9 +33,7 @@ def test_every_instrument_is_put_to_use(cold_room: LoadedPlant, cold_room_model:
     assert "no instrument of the plant reads heat source flow" in found.not_read["heat_source_flow"]
 
 
-def test_undecidable_guarantee_names_a_change_that_decides(
-    cold_room: LoadedPlant, tmp_path: Path
-) -> None:
+def test_undecidable_guarantee_names_a_change_that_decides(cold_room: LoadedPlant, tmp_path: Path) -> None:
     """A guarantee near what the model expects cannot be decided by clamped-on probes; the named change, applied to the
     budget, gives a decision."""
     near = write_plant(tmp_path / "near", COLD_ROOM.replace("value: 3.3 kW", "value: 3.7 kW"))
@@ -77,7 +75,7 @@ def test_matched_pair_is_what_makes_it_provable(chiller: LoadedPlant, tmp_path: 
 
 
 def test_inlets_without_an_instrument_are_assumed(cold_room: LoadedPlant, tmp_path: Path) -> None:
-    """A plant without any instrument still gets a page: inlets are assumed with a warning, the rest is listed as unread."""
+    """A plant without instruments still gets a page: inlets are assumed with a warning, the rest is listed as unread."""
     start = COLD_ROOM.index("instruments:")
     bare = COLD_ROOM[:start] + COLD_ROOM[COLD_ROOM.index("systems:") :]
     bare = bare.replace("    measured_with: {power_input: power meter}\n", "")

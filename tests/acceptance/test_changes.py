@@ -80,7 +80,7 @@ def test_nothing_to_change() -> None:
 
 
 def test_advice_on_the_limit_and_beyond_reach() -> None:
-    """On the limit only another test decides; where no instrument would do the sentence says so and names other ways."""
+    """On the limit only another test decides; where no instrument would do it says so and names other ways."""
     on_it = with_advice(decide(LIMIT, budget(1.0), LIMIT, None, "guarded"), budget(1.0))
     assert on_it.what_would_decide is not None
     assert "on the limit itself" in on_it.what_would_decide

@@ -25,7 +25,9 @@ const [script, page] = process.argv.slice(1, 3).map((p) => fs.readFileSync(p, "u
 vm.runInThisContext(script);
 vm.runInThisContext(page);
 const given = JSON.parse(fs.readFileSync(0, "utf8"));
-const errors = given.wrong.map((a) => { try { commissionDecision.decide(...a); return null; } catch (e) { return e.message; } });
+const errors = given.wrong.map((a) => {
+  try { commissionDecision.decide(...a); return null; } catch (e) { return e.message; }
+});
 console.log(JSON.stringify({
   failed: commissionDecision.selfTest(given.vectors), page: commissionDecision.selfTest(commissionDecisionVectors),
   errors,

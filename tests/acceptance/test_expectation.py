@@ -40,15 +40,13 @@ def test_condition_comes_in_through_the_sensitivities(cold_room_model: SystemMod
     assert found["discharge_pressure"].explained.uncertainty == budget.standard
 
 
+@pytest.mark.long
 def test_budget_of_an_expectation_agrees_with_monte_carlo(cold_room_model: SystemModel) -> None:
     """JCGM 101: drawing the condition itself moves the expected pressures as the sensitivities say (8 %, 300 draws)."""
     at = conditions(303.15, 275.15, 1.0)
     found = expect(cold_room_model, at, ("suction_pressure", "discharge_pressure"))
     random.seed(3)
     draws: dict[str, list[float]] = {k: [] for k in found}
-    facts, plan = cold_room_model.facts, cold_room_model.fit.plan
-    assert facts is not None
-    assert plan is not None
     for _ in range(300):
         one = cold_room_model.predict({SINK: random.gauss(303.15, 1.0), SOURCE: random.gauss(275.15, 1.0)})
         for key, values in draws.items():
@@ -65,8 +63,8 @@ def test_keys_can_be_chosen(cold_room_model: SystemModel) -> None:
 
 
 def test_deviation_keeps_the_shared_condition(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
-    """Source inlet minus evaporating: its reading and its expectation share the probe at the inlet, so that the doubt of
-    that probe weighs only with one minus the sensitivity, not with both in full."""
+    """Source inlet minus evaporating: its reading and its expectation share the probe at the inlet, so that the doubt
+    of that probe weighs only with one minus the sensitivity, not with both in full."""
     found = evaluate(cold_room, cold_room_model, *visit(cold_room, cold_room_model))
     one = next(d for d in found.deviations if d.key == "evaporator_temperature_difference")
     cause = f"{SOURCE}: error of air probe"
@@ -119,9 +117,7 @@ def test_a_starved_evaporator_is_seen(cold_room: LoadedPlant, cold_room_model: S
     assert found["compressor_superheat"].deviation > 4.0
 
 
-def test_without_an_inlet_temperature_nothing_is_expected(
-    cold_room: LoadedPlant, cold_room_model: SystemModel
-) -> None:
+def test_without_an_inlet_temperature_nothing_is_expected(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
     """An expectation needs the condition: without the air on the condenser every reading says why it is not judged."""
     asked, read = visit(cold_room, cold_room_model, heat_sink_inlet_temperature=None)
     found = evaluate(cold_room, cold_room_model, asked, read)
@@ -132,5 +128,7 @@ def test_without_an_inlet_temperature_nothing_is_expected(
 def test_methods_are_in_the_table(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
     """Every number of an evaluation names a method that the table of methods holds."""
     found = evaluate(cold_room, cold_room_model, *visit(cold_room, cold_room_model))
-    used = {d.explained.method for d in found.derived.values()} | {e.explained.method for e in found.expectations.values()}
+    used = {d.explained.method for d in found.derived.values()} | {
+        e.explained.method for e in found.expectations.values()
+    }
     assert used <= set(methods())

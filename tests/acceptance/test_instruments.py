@@ -178,9 +178,7 @@ def test_instrument_not_stated_is_assumed_and_said() -> None:
     found = measure(Reading("suction_temperature", 278.15), {}, AIR)
     assert "the instrument is not stated; its uncertainty is assumed" in found.budget.warnings[0]
     assert found.budget.standard > 0.5
-    incomplete = measure(
-        Reading("suction_temperature", 278.15, "p"), {"p": instrument(measures="temperature")}, AIR
-    )
+    incomplete = measure(Reading("suction_temperature", 278.15, "p"), {"p": instrument(measures="temperature")}, AIR)
     assert "not stated well enough (p: neither accuracy nor class" in incomplete.budget.warnings[0]
     with pytest.raises(NotCalculatedError, match="nothing usual is known"):
         assumed_budget("cooling_cop", 3.0, AIR)

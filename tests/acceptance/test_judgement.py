@@ -24,7 +24,9 @@ def test_trim_has_deviations_and_no_verdict(cold_room: LoadedPlant, cold_room_mo
     assert len(found.deviations) > 10
 
 
-def chiller_test(chiller: LoadedPlant, model: SystemModel, since_start: float | None = 3600.0, **changes: float) -> Judgement:
+def chiller_test(
+    chiller: LoadedPlant, model: SystemModel, since_start: float | None = 3600.0, **changes: float
+) -> Judgement:
     """A test of the chiller at its rated condition with some readings changed."""
     return judge(chiller, model, *visit(chiller, model, **changes), "test", on=DAY, since_start=since_start)
 

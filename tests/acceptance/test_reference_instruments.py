@@ -61,6 +61,8 @@ def test_rectangular_limits_become_standard_uncertainties() -> None:
     from commission.acceptance.instruments import instrument_budget
     from commission.description.model import Instrument
 
-    probe = Instrument.model_validate({"measures": "temperature", "class": "IEC 60751 A", "calibrated_until": "2027-01-01"})
+    probe = Instrument.model_validate(
+        {"measures": "temperature", "class": "IEC 60751 A", "calibrated_until": "2027-01-01"}
+    )
     budget = instrument_budget(probe, "liquid_temperature", 323.15, 101325.0)
     assert budget.standard == pytest.approx(0.25 / math.sqrt(3.0))

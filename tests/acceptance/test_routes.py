@@ -65,9 +65,7 @@ def test_heat_balance_returns_the_capacity_of_the_model(cold_room: LoadedPlant, 
         assert found.capacity(key).measured.value == pytest.approx(expected[key].value, rel=1e-3)
 
 
-def test_heat_balance_is_as_uncertain_as_the_field_says(
-    cold_room: LoadedPlant, cold_room_model: SystemModel
-) -> None:
+def test_heat_balance_is_as_uncertain_as_the_field_says(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
     """With ordinary site instruments 7 to 10 % (95 %) are honest (Nordtest, Fahlén); here with clamped-on probes."""
     found = evaluate(cold_room, cold_room_model, *visit(cold_room, cold_room_model)).capacity("cooling_capacity")
     assert 0.06 < found.measured.budget.expanded() / found.measured.value < 0.13
@@ -164,7 +162,7 @@ def test_sides_refuse_the_other_medium() -> None:
 
 
 def test_air_side_of_a_condenser_by_hand() -> None:
-    """2600 m3/h of air at 20 °C, 50 %: 1.19 kg/m3 times 1.02 kJ/kg K times 6 K is 5.26 kW (1 %); honest 10 % or more."""
+    """2600 m3/h of air at 20 °C, 50 %: 1.19 kg/m3 times 1.02 kJ/kg K times 6 K is 5.26 kW (1 %); U is 10 % or more."""
     readings = sure(
         heat_sink_inlet_temperature=293.15, heat_sink_outlet_temperature=299.15, heat_sink_flow=2600 / 3600,
         heat_sink_relative_humidity=0.5,
@@ -189,7 +187,7 @@ def test_air_side_refuses_a_wet_coil() -> None:
         air_side(Medium(medium="air"), "source", AIR, dry)
 
 
-def test_two_routes_close(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
+def test_two_routes_close(chiller_model: SystemModel) -> None:
     """First law: on the expected readings sink heat less source heat less the power that stays in the gas is zero."""
     expected = chiller_model.predict().expected
     at = {k: Measured(k, e.value) for k, e in expected.items()}

@@ -16,12 +16,12 @@ from tests.acceptance.conftest import COLD_ROOM, write_plant
 from tests.acceptance.visits import visit
 
 SINK, SOURCE = "heat_sink_inlet_temperature", "heat_source_inlet_temperature"
-RANGES = {SINK: grid_of(288.15, 308.15, 2.5), SOURCE: grid_of(273.15, 277.15, 2.0)}
+RANGES = {SINK: grid_of(293.15, 308.15, 5.0), SOURCE: (273.15, 277.15)}
 
 
 @pytest.fixture(scope="module")
 def sheet(cold_room: LoadedPlant, cold_room_model: SystemModel) -> TestSheet:
-    """A sheet of the cold room over 15 to 35 °C outdoors."""
+    """A sheet of the cold room over 20 to 35 °C outdoors."""
     return make_sheet(cold_room, cold_room_model, RANGES, prepared_for=dt.date(2026, 5, 14), title="acceptance test")
 
 
@@ -30,11 +30,9 @@ def at(sink: float, source: float) -> dict[str, Measured]:
     return {SINK: Measured(SINK, sink), SOURCE: Measured(SOURCE, source)}
 
 
-def test_same_sheet_same_bytes(sheet: TestSheet, cold_room: LoadedPlant) -> None:
+def test_same_sheet_same_bytes(sheet: TestSheet, cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
     """Made twice from the same description, and read back, the text is the same to the byte."""
-    again = make_sheet(
-        cold_room, fit(cold_room, "cold-room"), RANGES, prepared_for=dt.date(2026, 5, 14), title="acceptance test"
-    )
+    again = make_sheet(cold_room, cold_room_model, RANGES, prepared_for=dt.date(2026, 5, 14), title="acceptance test")
     assert again.to_text() == sheet.to_text()
     assert read_sheet(sheet.to_text()).to_text() == sheet.to_text()
     assert read_sheet(sheet.to_text()).digest == sheet.digest
@@ -61,7 +59,9 @@ def test_line_ends_of_another_system_do_not_break_it(sheet: TestSheet, tmp_path:
     assert read_sheet(path).digest == sheet.digest
 
 
-@pytest.mark.parametrize("old_new", [("tolerance_below: 0.05", "tolerance_below: 0.15"), ("site", "none"), ("\n", "\n\n")])
+@pytest.mark.parametrize(
+    "old_new", [("tolerance_below: 0.05", "tolerance_below: 0.15"), ("site", "none"), ("\n", "\n\n")]
+)
 def test_tampering_is_detected(sheet: TestSheet, old_new: tuple[str, str]) -> None:
     """Any change of the body is found by the digest on the first line."""
     head, body = sheet.to_text().split("\n", 1)
@@ -102,13 +102,13 @@ def test_unreadable_files_are_refused(tmp_path: Path) -> None:
 
 def test_points_are_the_model_and_between_is_bounded(sheet: TestSheet, cold_room_model: SystemModel) -> None:
     """At a grid point the sheet is the model; between the points it is within the error that it states itself."""
-    found, reasons = sheet.expectations(at(298.15, 275.15))
-    model = cold_room_model.predict({SINK: 298.15, SOURCE: 275.15}).expected
+    found, reasons = sheet.expectations(at(298.15, 277.15))
+    model = cold_room_model.predict({SINK: 298.15, SOURCE: 277.15}).expected
     assert reasons == {}
     for key, expectation in found.items():
-        assert expectation.value == pytest.approx(model[key].value, rel=1e-7, abs=1e-7)
-    between, _ = sheet.expectations(at(299.4, 274.15))
-    exact = cold_room_model.predict({SINK: 299.4, SOURCE: 274.15}).expected
+        assert expectation.value == pytest.approx(model[key].value, rel=1e-6, abs=1e-6)
+    between, _ = sheet.expectations(at(300.65, 275.15))
+    exact = cold_room_model.predict({SINK: 300.65, SOURCE: 275.15}).expected
     for target in sheet.targets_for("expectation"):
         assert abs(between[target.key].value - exact[target.key].value) <= 1.05 * target.between + 1e-9
 
@@ -161,7 +161,7 @@ def test_later_changes_never_move_a_frozen_verdict(
     changed = (
         COLD_ROOM.replace("value: 3.3 kW", "value: 4.4 kW")
         .replace("cooling_capacity: 3.45 kW", "cooling_capacity: 3.60 kW")
-        .replace("    duty: cold_storage", "    assumptions: {suction_line_loss: {value: 2 K, source: measured}}\n    duty: cold_storage")
+        .replace("    duty:", "    assumptions: {suction_line_loss: {value: 2 K, source: measured}}\n    duty:")
     )  # fmt: skip
     other = write_plant(tmp_path / "changed", changed)
     other_model = fit(other, "cold-room")

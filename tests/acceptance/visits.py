@@ -20,7 +20,7 @@ def visit(
     prediction = model.predict(conditions)
     system, instruments = loaded.system(model.system_id), loaded.plant.instruments
     values: dict[str, float | None] = {k: e.value for k, e in prediction.expected.items()}
-    values.update({k: v for k, v in prediction.conditions.items() if k.endswith("inlet_temperature")})
+    values.update(prediction.conditions)
     values.update(changes)
     asked, read = [], []
     for key, value in values.items():
