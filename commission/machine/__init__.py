@@ -7,6 +7,7 @@ from commission.machine.operating_point import Balance, Media, OperatingPoint, S
 from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage, SuctionLine
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
+from commission.machine.wet_air import LeavingAir, coil_conductance, leaving_air
 
 __all__ = [
     "FREE",
@@ -18,6 +19,7 @@ __all__ = [
     "EfficiencyShape",
     "Exchanger",
     "HeadPressure",
+    "LeavingAir",
     "Media",
     "NoSolutionError",
     "OperatingPoint",
@@ -28,9 +30,11 @@ __all__ = [
     "SuctionLine",
     "air_stream",
     "carnot_cooling",
+    "coil_conductance",
     "conductance_for",
     "effectiveness",
     "entropic_mean",
+    "leaving_air",
     "liquid_stream",
     "solve",
 ]

@@ -13,6 +13,7 @@ from typing import Literal
 
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
+from commission.machine.wet_air import coil_heat
 
 Flow = Literal["counterflow", "parallel", "crossflow unmixed"]
 
@@ -64,17 +65,25 @@ class Exchanger:
 
     `conductance` in W/K holds at `rated_flow` (m3/s) of the medium; elsewhere it follows flow to the power
     `flow_exponent`, which is the share of the medium's side in the whole resistance times its own exponent.
+    `air_share` is the air side's share of the resistance of a coil that may be wet; None for one that stays dry.
     """
 
     conductance: float
     rated_flow: float
     flow_exponent: float = 0.0
+    air_share: float | None = None
 
     def conductance_at(self, volume_flow: float) -> float:
         """Conductance in W/K at another flow of the medium in m3/s."""
         if self.flow_exponent == 0.0 or volume_flow == self.rated_flow:
             return self.conductance
         return self.conductance * float((volume_flow / self.rated_flow) ** self.flow_exponent)
+
+    def heat_from(self, stream: Stream, refrigerant: float) -> float:
+        """Heat in W that a medium gives to refrigerant evaporating at `refrigerant` (K), wet coils included."""
+        if self.air_share is not None and stream.air is not None:
+            return coil_heat(stream, refrigerant, self.conductance_at(stream.volume_flow), self.air_share)
+        return self.heat_per_kelvin(stream) * (stream.temperature - refrigerant)
 
     def heat_per_kelvin(self, stream: Stream, flow_share: float = 1.0, surface_share: float = 1.0) -> float:
         """Heat in W for each kelvin between the known temperature of the medium and the refrigerant.

@@ -170,9 +170,8 @@ class _Circuit:
 
     def _source_gap(self, evaporating: float, condensing: float, taken: float) -> float:
         source, exchanger = self.media.source, self.machine.evaporator
-        per_kelvin = exchanger.heat_per_kelvin(source)
-        given = per_kelvin * (source.temperature - self.source_drive(evaporating, condensing))
-        return (given - taken) / (per_kelvin * 10.0)
+        given = exchanger.heat_from(source, self.source_drive(evaporating, condensing))
+        return (given - taken) / (exchanger.heat_per_kelvin(source) * 10.0)
 
     def _sink_gap(self, condensing: float, given: float, share: float) -> float:
         m, sink = self.machine, self.media.sink

@@ -1,16 +1,33 @@
-"""What air does at a cold coil: sensible where its surface is above the dew point, wet where it is below. SI units."""
+"""Air coils that may be wet or frosted: total heat, leaving air, condensate. SI units.
+
+Braun, Klein & Mitchell, "Effectiveness models for cooling towers and cooling coils", ASHRAE Transactions 95 (2) 1989,
+164-174: a wet coil is an exchanger driven by the enthalpy of moist air against that of saturated air at the refrigerant
+temperature; the heat of a coil is the greater of the all-dry and the all-wet answer, which leaves out at most a few
+per cent where a coil is partly wet. Lewis number one. The refrigerant evaporates, so that the ratio of capacity rates
+is zero.
+"""
 
 from __future__ import annotations
 
+import math
+from collections.abc import Callable
 from dataclasses import dataclass
 
+from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
-from commission.properties import MoistAir, moist_air
+from commission.properties import saturated_air, saturated_air_at_enthalpy
+
+LATENT = 2.501e6
+"""Latent heat of water at 0 °C in J/kg (ASHRAE Handbook Fundamentals 2017, ch. 1, eq. 30)."""
+FUSION = 3.336e5
+"""Latent heat of fusion of ice at 0 °C in J/kg (same chapter)."""
+FREEZING, FROST_SPAN = 273.15, 2.0
+"""Below freezing the condensate is ice; it sets in over this span of refrigerant temperature, so that nothing jumps."""
 
 
 @dataclass(frozen=True, slots=True)
 class LeavingAir:
-    """Air after the coil: temperature in K, humidity ratio, sensible share of the heat, condensate in kg/s."""
+    """Air after the coil: temperature in K, humidity ratio, sensible share of the heat, condensate or frost in kg/s."""
 
     temperature: float
     humidity_ratio: float
@@ -18,42 +35,103 @@ class LeavingAir:
     condensate: float
 
 
-LATENT = 2.501e6
-"""Latent heat of water at 0 °C in J/kg (ASHRAE Handbook Fundamentals, ch. 1, eq. 30)."""
+def coil_heat(stream: Stream, refrigerant: float, conductance: float, air_share: float) -> float:
+    """Heat in W that air gives to a coil with refrigerant at `refrigerant` (K).
 
-
-def leaving_air(stream: Stream, heat: float, refrigerant_temperature: float) -> LeavingAir:
-    """Air that gave `heat` (W) to a coil evaporating at `refrigerant_temperature` (K).
-
-    Where the coil is dry all heat is sensible. Where its surface lies below the dew point of the air, the air moves on
-    a straight line towards saturated air at one effective surface temperature (apparatus dew point; ASHRAE Handbook
-    HVAC Systems and Equipment, chapter on air-cooling coils), taken between refrigerant and leaving air in the ratio
-    of 1 to 1: the surface resistance is of the order of the inner one for a coil with condensate.
+    `conductance` in W/K is that of the dry coil; `air_share` (0-1) is the air side's part of its resistance.
     """
-    assert stream.air is not None
+    dry = stream.capacity_rate * -math.expm1(-conductance / stream.capacity_rate) * (stream.temperature - refrigerant)
+    if stream.air is None or refrigerant >= stream.temperature:
+        return dry
+    return max(dry, _wet_heat(stream, refrigerant, conductance, air_share))
+
+
+def _ice(refrigerant: float) -> float:
+    """Share of the condensate that freezes on the coil, smooth from 0 to 1."""
+    x = min(max((FREEZING - refrigerant) / FROST_SPAN, 0.0), 1.0)
+    return x * x * (3 - 2 * x)
+
+
+def _wet_heat(stream: Stream, refrigerant: float, conductance: float, air_share: float) -> float:
+    """Heat of an all-wet coil (Braun et al. eq. 10, 16 and 24 with an evaporating refrigerant)."""
     air = stream.air
-    per_air = heat / stream.mass_flow
+    assert air is not None
+    fusion = FUSION * _ice(refrigerant)
+    cold = saturated_air(refrigerant, air.p)
+    surface = refrigerant + (1 - air_share) * (stream.temperature - refrigerant)
+    warm = saturated_air(surface, air.p)
+    slope = (warm.h - cold.h + fusion * (warm.W - cold.W)) / max(surface - refrigerant, 1e-9)
+    outer = conductance / air_share
+    inner = conductance / (1 - air_share) if air_share < 1 else math.inf
+    transfer = outer / air.cp / (1 + slope * outer / (air.cp * inner))
+    drive = air.h - cold.h + fusion * (air.W - cold.W)
+    return stream.mass_flow * -math.expm1(-transfer / stream.mass_flow) * drive
+
+
+def leaving_air(stream: Stream, heat: float, refrigerant: float, conductance: float, air_share: float) -> LeavingAir:
+    """Air that gave `heat` (W) to the coil of `coil_heat`.
+
+    The air moves on a straight line towards saturated air at one effective surface temperature (Braun et al., eq. 25 to
+    27).
+
+    Raises:
+        NotCalculatedError: the coil would have to be colder than any moist air is known.
+    """
+    air = stream.air
+    assert air is not None
     dry = stream.temperature - heat / stream.capacity_rate
-    surface = 0.5 * (refrigerant_temperature + dry)
-    if surface >= air.dew_point:
+    bypass = math.exp(-conductance / air_share / stream.capacity_rate)
+    if stream.temperature - heat / stream.capacity_rate / (1 - bypass) >= air.dew_point:
         return LeavingAir(dry, air.W, 1.0, 0.0)
-    temperature = dry
-    for _ in range(40):
-        surface = 0.5 * (refrigerant_temperature + temperature)
-        saturated = moist_air(min(surface, air.T), air.p, relative_humidity=1.0)
-        way = min(per_air / (air.h - saturated.h), 1.0)
-        new = _on_line(air, saturated, way)
-        if abs(new - temperature) < 1e-9:
-            break
-        temperature = new
-    W = air.W + way * (saturated.W - air.W)
-    condensate = stream.mass_flow * max(air.W - W, 0.0)
-    return LeavingAir(temperature, W, 1.0 - condensate * LATENT / heat, condensate)
+    fusion = FUSION * _ice(refrigerant)
+    wanted = air.h + fusion * air.W - heat / stream.mass_flow / (1 - bypass)
+    surface = saturated_air_at_enthalpy(wanted, air.p)
+    if fusion:
+        T = _root(lambda t: _potential(t, air.p, fusion) - wanted, surface.T - 8.0, surface.T + 8.0)
+        surface = saturated_air(T, air.p)
+    W = surface.W + (air.W - surface.W) * bypass
+    condensate = stream.mass_flow * (air.W - W)
+    sensible = 1 - condensate * (LATENT + fusion) / heat
+    return LeavingAir(surface.T + (stream.temperature - surface.T) * bypass, W, sensible, condensate)
 
 
-def _on_line(air: MoistAir, saturated: MoistAir, way: float) -> float:
-    """Temperature of air mixed of `air` and `saturated`, by its enthalpy and humidity ratio (cp of ASHRAE, eq. 30)."""
-    h = air.h + way * (saturated.h - air.h)
-    W = air.W + way * (saturated.W - air.W)
-    zero = air.h - (1006.0 * (air.T - 273.15) + air.W * (LATENT + 1860.0 * (air.T - 273.15)))
-    return (h - zero - W * LATENT) / (1006.0 + 1860.0 * W) + 273.15
+def _potential(T: float, p: float, fusion: float) -> float:
+    air = saturated_air(T, p)
+    return air.h + fusion * air.W
+
+
+def coil_conductance(heat: float, refrigerant: float, stream: Stream, air_share: float) -> float:
+    """Dry conductance in W/K of the coil that takes `heat` (W): the inverse of `coil_heat`.
+
+    Raises:
+        NotCalculatedError: more heat than the air can give at that difference, whatever the conductance.
+    """
+    greatest = coil_heat(stream, refrigerant, 1e4 * stream.capacity_rate, air_share)
+    if not 0 < heat < greatest:
+        raise NotCalculatedError(
+            f"{heat / 1e3:.2f} kW cannot be transferred at {stream.temperature - refrigerant:.1f} K inlet difference: "
+            f"the air flow would carry {greatest / 1e3:.2f} kW at most"
+        )
+    low, high = math.log(1e-4 * stream.capacity_rate), math.log(1e4 * stream.capacity_rate)
+    return math.exp(_root(lambda x: coil_heat(stream, refrigerant, math.exp(x), air_share) - heat, low, high))
+
+
+def _root(f: Callable[[float], float], low: float, high: float) -> float:
+    """Root of a rising function between two ends by the Illinois rule (Dowell & Jarratt 1971)."""
+    f_low, f_high = f(low), f(high)
+    if f_low > 0 or f_high < 0:
+        raise NotCalculatedError("the coil would have to be colder than any moist air is known")
+    x = low
+    for _ in range(100):
+        x_new = (low * f_high - high * f_low) / (f_high - f_low) if f_high != f_low else 0.5 * (low + high)
+        if abs(x_new - x) < 1e-11 * max(1.0, abs(x)):
+            return x_new
+        x = x_new
+        y = f(x)
+        if y < 0:
+            low, f_low, f_high = x, y, 0.5 * f_high
+        elif y > 0:
+            high, f_high, f_low = x, y, 0.5 * f_low
+        else:
+            return x
+    return x

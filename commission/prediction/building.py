@@ -17,6 +17,7 @@ from commission.machine import (
     Stream,
     SuctionLine,
     air_stream,
+    coil_conductance,
     conductance_for,
     liquid_stream,
 )
@@ -201,7 +202,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     machine = SingleStage(
         refrigerant=facts.fluid,
         compressor=compressor,
-        evaporator=Exchanger(levels.evaporator, rated.source_flow, exponent),
+        evaporator=Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a)),
         condenser=Exchanger(levels.condenser, rated.sink_flow, exponent),
         superheat=superheat,
         subcooling=a["liquid_subcooling"],
@@ -258,6 +259,11 @@ def _side(
     return stream(temperature, conditions.get(f"{side}_flow", flow), medium, wet, pressure, by_outlet)
 
 
+def air_share(facts: Facts, a: Mapping[str, float]) -> float | None:
+    """Share of the air side in the resistance of an air coil that takes heat; None for a liquid."""
+    return a["coil_air_share"] if facts.source_liquid is None else None
+
+
 def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: float) -> float | None:
     """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
     part = facts.system.evaporator
@@ -269,7 +275,8 @@ def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: fl
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
     capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
-    return _rating("evaporator", capacity, rating.temperature_difference, medium)
+    share = air_share(facts, a) if rating.surface != "dry" else None
+    return _rating("evaporator", capacity, rating.temperature_difference, medium, share)
 
 
 def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float) -> float | None:
@@ -286,8 +293,19 @@ def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float
     return _rating("condenser", capacity, rating.temperature_difference, medium)
 
 
-def _rating(what: str, capacity: float, difference: float, medium: Stream) -> float:
+def source_conductance(heat: float, difference: float, medium: Stream, share: float | None) -> float:
+    """Conductance in W/K of an evaporator that takes `heat` (W) at an inlet difference (K), wet coils included.
+
+    Raises:
+        NotCalculatedError: more heat than the medium can give at that difference.
+    """
+    if share is None or medium.air is None:
+        return conductance_for(heat, difference, medium.capacity_rate)
+    return coil_conductance(heat, medium.temperature - difference, medium, share)
+
+
+def _rating(what: str, capacity: float, difference: float, medium: Stream, share: float | None = None) -> float:
     try:
-        return conductance_for(capacity, difference, medium.capacity_rate)
+        return source_conductance(capacity, difference, medium, share)
     except NotCalculatedError as error:
         raise NotCalculatedError(f"the rating of the {what} and the flow cannot both be right: {error}") from None

@@ -7,8 +7,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
-from commission.machine import Balance, Media, OperatingPoint, carnot_cooling, entropic_mean
-from commission.machine.wet_air import leaving_air
+from commission.machine import Balance, Media, OperatingPoint, carnot_cooling, entropic_mean, leaving_air
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
 
@@ -52,7 +51,7 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     }
     found = Found(values, {})
     _add(found, "current", lambda: _current(facts, plan, power))
-    _media(media, balance, found)
+    _media(plan, media, balance, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
@@ -73,7 +72,7 @@ def _current(facts: Facts, plan: Plan, power: float) -> float:
     return power / (lines * plate.voltage * plan.power_factor)
 
 
-def _media(media: Media, balance: Balance, found: Found) -> None:
+def _media(plan: Plan, media: Media, balance: Balance, found: Found) -> None:
     source = media.source
     source_in, sink_in, sink_out = (
         balance.source_inlet_temperature,
@@ -81,7 +80,11 @@ def _media(media: Media, balance: Balance, found: Found) -> None:
         balance.sink_outlet_temperature,
     )
     if source.air is not None:
-        source_out = leaving_air(source, balance.heat_from_source, balance.evaporating_temperature).temperature
+        coil = plan.machine.evaporator
+        conductance = coil.conductance_at(source.volume_flow)
+        left = leaving_air(source, balance.heat_from_source, balance.source_drive, conductance, coil.air_share or 1.0)
+        source_out = left.temperature
+        found.values["sensible_heat_ratio"] = left.sensible_share
     else:
         source_out = source.outlet(-balance.heat_from_source)
     found.values["heat_source_inlet_temperature"] = source_in

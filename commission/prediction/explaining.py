@@ -36,6 +36,7 @@ METHOD: Mapping[str, str] = {
     "cooling_cop": "cop",
     "heating_cop": "cop",
     "carnot_cop": "carnot_cooling",
+    "sensible_heat_ratio": "wet_coil",
     "heat_source_inlet_temperature": "medium_outlet",
     "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
@@ -71,6 +72,7 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "cooling_cop": ("cooling_capacity", "power_input"),
     "heating_cop": ("heating_capacity", "power_input"),
     "carnot_cop": ("heat_source_outlet_temperature", "heat_sink_outlet_temperature"),
+    "sensible_heat_ratio": ("cooling_capacity", "evaporating_temperature"),
     "heat_source_outlet_temperature": ("cooling_capacity",),
     "heat_sink_outlet_temperature": ("heating_capacity",),
     "heat_source_temperature_change": ("cooling_capacity",),
@@ -79,11 +81,16 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
 """Expected values that each value is calculated from."""
 
 _MEDIA: Mapping[str, tuple[str, ...]] = {
-    "evaporating_temperature": ("heat_source_inlet_temperature", "heat_source_flow"),
+    "evaporating_temperature": (
+        "heat_source_inlet_temperature",
+        "heat_source_relative_humidity",
+        "heat_source_flow",
+    ),
     "condensing_temperature": ("heat_sink_inlet_temperature", "heat_sink_flow"),
     "evaporator_temperature_difference": ("heat_source_inlet_temperature",),
     "condenser_temperature_difference": ("heat_sink_inlet_temperature",),
     "carnot_cop": ("heat_source_inlet_temperature", "heat_sink_inlet_temperature"),
+    "sensible_heat_ratio": ("heat_source_inlet_temperature", "heat_source_relative_humidity", "heat_source_flow"),
     "heat_source_outlet_temperature": (
         "heat_source_inlet_temperature",
         "heat_source_flow",

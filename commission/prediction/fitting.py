@@ -23,11 +23,13 @@ from commission.prediction.building import (
     Levels,
     Plan,
     Rated,
+    air_share,
     build,
     condenser_conductance,
     evaporator_conductance,
     humidity,
     media,
+    source_conductance,
     stream,
 )
 from commission.prediction.facts import Facts, Used
@@ -136,7 +138,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     medium = stream(
         rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
     )
-    return conductance_for(rated.source_heat, a["source_minus_evaporating"], medium.capacity_rate)
+    return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
 
 
 def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool) -> list[Datum]:
@@ -221,11 +223,8 @@ def _conductances(
         medium = stream(
             rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
         )
-        evaporator = conductance_for(
-            rated.source_heat,
-            rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating),
-            medium.capacity_rate,
-        )
+        difference = rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating)
+        evaporator = source_conductance(rated.source_heat, difference, medium, air_share(facts, a))
     return condenser, evaporator
 
 

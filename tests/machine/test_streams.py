@@ -8,7 +8,6 @@ import pytest
 
 from commission.errors import NotCalculatedError
 from commission.machine import Exchanger, air_stream, carnot_cooling, entropic_mean, liquid_stream
-from commission.machine.wet_air import leaving_air
 from commission.properties import liquid
 
 
@@ -27,7 +26,7 @@ def test_carnot_needs_a_warmer_sink() -> None:
 
 
 def test_inlet_or_outlet_known_is_the_same_exchanger() -> None:
-    """The heat of an exchanger is the same whether the inlet or the outlet it causes is given (water data at either end)."""
+    """The heat is the same whether the inlet or the outlet it causes is given (water data at either end)."""
     water = liquid("water", 0.0)
     inlet = liquid_stream(303.15, 4e-4, water)
     exchanger = Exchanger(2500.0, 4e-4)
@@ -41,21 +40,3 @@ def test_flow_must_be_positive() -> None:
     """No flow is no condition: refused, not divided by."""
     with pytest.raises(NotCalculatedError, match="positive"):
         air_stream(293.15, 0.0, 0.5, 101325.0)
-
-
-def test_leaving_air_is_dry_over_a_warm_coil() -> None:
-    """Where the coil is warmer than the dew point all heat is sensible."""
-    air = air_stream(303.15, 0.5, 0.3, 101325.0)
-    left = leaving_air(air, 2000.0, 291.15)
-    assert left.sensible_share == 1.0
-    assert left.temperature == pytest.approx(303.15 - 2000 / air.capacity_rate)
-
-
-def test_leaving_air_keeps_the_first_law_over_a_wet_coil() -> None:
-    """Sensible and latent heat add to the heat taken; the air leaves below saturation."""
-    air = air_stream(275.15, 0.58, 0.85, 97653.0)
-    left = leaving_air(air, 3600.0, 267.15)
-    sensible = air.capacity_rate * (275.15 - left.temperature)
-    assert 0.6 < left.sensible_share < 0.95
-    assert sensible == pytest.approx(left.sensible_share * 3600.0, rel=0.02)
-    assert left.condensate > 0
