@@ -2,9 +2,22 @@
 
 from commission.review.finding import SEVERITIES, Figure, Finding, Severity
 from commission.review.frame import Rule, review
-from commission.review.thresholds import Threshold, thresholds
+from commission.review.thresholds import OWN_FILE, ReviewFileError, Threshold, thresholds, thresholds_of
 
-__all__ = ["SEVERITIES", "Figure", "Finding", "Rule", "Severity", "Threshold", "review", "rules", "thresholds"]
+__all__ = [
+    "OWN_FILE",
+    "SEVERITIES",
+    "Figure",
+    "Finding",
+    "ReviewFileError",
+    "Rule",
+    "Severity",
+    "Threshold",
+    "review",
+    "rules",
+    "thresholds",
+    "thresholds_of",
+]
 
 
 def rules() -> tuple[Rule, ...]:

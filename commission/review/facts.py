@@ -12,7 +12,7 @@ from commission.description.model import Conditions, RatedPoint, System
 from commission.errors import CommissionError
 from commission.quantities import NOMENCLATURE, Display, Explained, Kind, Pressure
 from commission.review.finding import Figure, Severity
-from commission.review.thresholds import Threshold, thresholds
+from commission.review.thresholds import Threshold, thresholds, thresholds_of
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction, SystemModel
@@ -30,19 +30,20 @@ COOLING_DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling")
 
 @dataclass(frozen=True, slots=True)
 class PlantFacts:
-    """The plant as loaded, how it shows numbers, and the day of the visit where one is known."""
+    """The plant as loaded, how it shows numbers, the day of the visit where one is known, and the thresholds."""
 
     loaded: LoadedPlant
     display: Display
     visit: dt.date | None
+    thresholds: Mapping[str, Threshold] = field(default_factory=thresholds)
 
     def threshold(self, key: str) -> Threshold:
-        """One entry of `thresholds.yaml`."""
-        return thresholds()[key]
+        """One threshold, the plant's own where it has one."""
+        return self.thresholds[key]
 
     def limit(self, key: str) -> float:
         """The value of a threshold in SI."""
-        return thresholds()[key].value
+        return self.thresholds[key].value
 
     def figure(self, label: str, value: float, kind: Kind, digits: int | None = None) -> Figure:
         """A figure from an SI value (pressures absolute)."""
@@ -100,6 +101,11 @@ class SystemFacts:
         """Whether the duty is to take heat away."""
         return self.system.duty in COOLING_DUTIES
 
+    @property
+    def evaporative(self) -> bool:
+        """Whether the heat goes off by evaporation, so that the wet bulb of the air counts and not its dry bulb."""
+        return self.system.condenser.type == "evaporative"
+
     def path(self, *parts: str | int) -> str:
         """The key path of a part of this system."""
         return ".".join(["systems", self.id, *map(str, parts)])
@@ -142,8 +148,13 @@ def conditions_of(part: Conditions) -> dict[str, float]:
 
 
 def gather(loaded: LoadedPlant, visit: dt.date | None) -> tuple[PlantFacts, tuple[SystemFacts, ...]]:
-    """The facts of the plant and of each system in the order of the file; what fails for one stops no other."""
-    plant = PlantFacts(loaded, Display(loaded.plant.plant.units, loaded.barometric_pressure), visit)
+    """The facts of the plant and of each system in the order of the file; what fails for one stops no other.
+
+    Raises:
+        ReviewFileError: the plant's own thresholds cannot be used.
+    """
+    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    plant = PlantFacts(loaded, display, visit, thresholds_of(loaded.folder))
     return plant, tuple(_system_facts(plant, key, system) for key, system in loaded.plant.systems.items())
 
 

@@ -32,6 +32,9 @@ def review(loaded: LoadedPlant, *, visit: dt.date | None = None) -> tuple[Findin
 
     `visit` is the day for which calibrations and dates are judged; without it they are judged only against the dates
     of the records. There is no clock: the same input gives the same findings.
+
+    Raises:
+        ReviewFileError: the plant's own `review.yaml` cannot be used.
     """
     from commission.review.table import RULES
 

@@ -98,8 +98,11 @@ def stream_mean(facts: SystemFacts, side: str, at: Conditions, heat: float | Non
 
     Both ends where they are written; an end that is missing follows from flow and heat where the medium is a liquid
     (`heat` in W). A lone inlet is itself a bound: the source gets no warmer, the sink no colder than it. A lone outlet
-    of a liquid is moved by the largest usual change of temperature. None where nothing bounds it.
+    of a liquid is moved by the largest usual change of temperature. Evaporative rejection is bounded by the wet bulb.
+    None where nothing bounds it.
     """
+    if side == "sink" and facts.evaporative:
+        return at.heat_sink_wet_bulb
     inlet = getattr(at, f"heat_{side}_inlet_temperature")
     outlet = getattr(at, f"heat_{side}_outlet_temperature")
     medium = facts.system.heat_source if side == "source" else facts.system.heat_sink

@@ -16,7 +16,7 @@ import pytest
 from commission.description import Assumption, LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.quantities import Kind, methods
-from commission.review import SEVERITIES, Rule, review, rules, thresholds
+from commission.review import SEVERITIES, ReviewFileError, Rule, review, rules, thresholds
 from commission.review import table as rule_table
 from commission.review.facts import Outlook, SystemFacts
 from commission.review.finding import Finding, Remark
@@ -50,6 +50,34 @@ def test_every_threshold_is_used_and_sourced() -> None:
         assert f'"{key}"' in code or (f'"{stem}"' in code and key.rsplit("_", 1)[1] in code)
         assert threshold.source
         assert threshold.mark
+
+
+OWN = """
+thresholds:
+  high_pressure_margin: {value: 40 %, source: agreed with the owner}
+"""
+
+
+def test_a_plant_may_have_its_own_thresholds(make_plant: Plants) -> None:
+    """A margin of 40 % makes a finding of what 10 % lets pass, and the finding says who wants it so."""
+    loaded = make_plant()
+    assert "pressure.limiter-and-day" not in {f.rule for f in review(loaded)}
+    (loaded.folder / "review.yaml").write_text(OWN, encoding="utf-8")
+    (finding,) = [f for f in review(loaded) if f.rule == "pressure.limiter-and-day"]
+    assert finding.severity == "warning"
+    assert (finding.source, finding.mark) == ("agreed with the owner", "stated by the plant")
+
+
+def test_own_thresholds_that_cannot_be_used(make_plant: Plants) -> None:
+    """An unknown name and a value of another kind are both reported, with line and nearest name."""
+    loaded = make_plant()
+    text = "thresholds:\n  high_pressure_margn: {value: 5 %, source: me}\n  freezing_margin: {value: 5 %, source: me}\n"
+    (loaded.folder / "review.yaml").write_text(text, encoding="utf-8")
+    with pytest.raises(ReviewFileError) as caught:
+        review(loaded)
+    first, second = caught.value.problems
+    assert (first.file, first.line, first.nearest) == ("review.yaml", 2, "high_pressure_margin")
+    assert (second.file, second.line, second.path) == ("review.yaml", 3, "thresholds.freezing_margin.value")
 
 
 def test_methods_named_by_the_rules_are_written_down() -> None:

@@ -169,6 +169,18 @@ def test_condensing_must_be_warmer_than_the_sink(
     assert [remark.severity for remark in found] == (["error"] if fires else [])
 
 
+@pytest.mark.parametrize(("condensing", "fires"), [("30 °C", False), ("20 °C", True)])
+def test_an_evaporative_condenser_is_held_to_the_wet_bulb(facts: Facts, condensing: str, fires: bool) -> None:
+    """30 °C condensing is below the dry bulb of 32 °C and fair, 20 °C is below the wet bulb of 22 °C and impossible."""
+    point = {**BALANCE, "heat_sink_wet_bulb": "22 °C", "condensing_temperature": condensing}
+    point |= {"cooling_capacity": "3.4 kW", "power_input": "1.5 kW"}
+    system = {"condenser": {"type": "evaporative"}, "rated_points": [point]}
+    found = list(exchangers.condenser_crosses(facts(system)))
+    assert [remark.severity for remark in found] == (["error"] if fires else [])
+    if fires:
+        assert figure(found[0], "Heat sink wet bulb").text == "22.0 °C"
+
+
 @pytest.mark.parametrize(
     ("outlet", "evaporating", "fires"),
     [(38.0, -4.0, False), (44.0, -4.0, False), (65.0, -4.0, True), (38.0, 6.0, True)],

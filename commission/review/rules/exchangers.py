@@ -57,17 +57,16 @@ def condenser_crosses(facts: SystemFacts) -> Iterator[Remark]:
 
     Source: second law. The dew point lies above the inlet of the sink. The sink may leave warmer than the dew point
     only by what the desuperheating gives (threshold `desuperheating_share` of the heat), because at the point where
-    condensation starts it must still be colder.
+    condensation starts it must still be colder. For evaporative rejection the wet bulb stands for the inlet.
     """
     for index, point in facts.rated_points():
         condensing = point.condensing_temperature
-        inlet, outlet = point.heat_sink_inlet_temperature, point.heat_sink_outlet_temperature
+        key = "heat_sink_wet_bulb" if facts.evaporative else "heat_sink_inlet_temperature"
+        inlet: float | None = getattr(point, key)
+        outlet = None if facts.evaporative else point.heat_sink_outlet_temperature
         if condensing is None or inlet is None:
             continue
-        figures = [
-            facts.plant.quantity("condensing_temperature", condensing),
-            facts.plant.quantity("heat_sink_inlet_temperature", inlet),
-        ]
+        figures = [facts.plant.quantity("condensing_temperature", condensing), facts.plant.quantity(key, inlet)]
         share = facts.plant.limit("desuperheating_share")
         where = None
         if condensing <= inlet:
@@ -99,7 +98,7 @@ def expected_crosses(facts: SystemFacts) -> Iterator[Remark]:
         condensing, inlet, outlet = (values.get(key) for key in CROSSING[:3])
         evaporating, source = (values.get(key) for key in CROSSING[3:])
         crossed = []
-        if condensing is not None and inlet is not None:
+        if condensing is not None and inlet is not None and not facts.evaporative:
             start = inlet + (1 - share) * ((outlet if outlet is not None else inlet) - inlet)
             if start >= condensing:
                 crossed += list(CROSSING[:3])
