@@ -211,11 +211,15 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
         raise NotCalculatedError(f"at {case.origin} more power goes in than heat comes out: no heat is left to take up")
     source_temperature, sink_temperature = _temperatures(facts, a, case)
     wet = case.conditions.get("heat_source_relative_humidity", humidity(facts, a))
-    source_flow = case.conditions.get("heat_source_flow", facts.system.heat_source.flow)
+    source_flow = case.conditions.get("heat_source_flow")
+    if source_flow is None and facts.system.heat_source.flow is not None:
+        source_flow = facts.system.heat_source.flow * (1 + a["source_flow_departure"])
     if source_flow is None:
         change = a["source_temperature_change"]
         source_flow = flow_for(cooling, change, source_temperature, facts.source_liquid, wet, facts.pressure)
-    sink_flow = case.conditions.get("heat_sink_flow", facts.system.heat_sink.flow)
+    sink_flow = case.conditions.get("heat_sink_flow")
+    if sink_flow is None and facts.system.heat_sink.flow is not None:
+        sink_flow = facts.system.heat_sink.flow * (1 + a["sink_flow_departure"])
     if sink_flow is None:
         change = a["sink_temperature_change"]
         sink_flow = flow_for(heating, change, sink_temperature, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
