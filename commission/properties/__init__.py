@@ -6,7 +6,7 @@ Nothing heavy is imported here: the equation of state is loaded when the first p
 from commission.properties.atmosphere import barometric_pressure
 from commission.properties.errors import PropertyRangeError
 from commission.properties.liquids import Liquid, liquid
-from commission.properties.moist_air import (
+from commission.properties.psychrometrics import (
     MoistAir,
     moist_air,
     moist_air_from_enthalpy,

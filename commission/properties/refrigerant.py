@@ -7,8 +7,8 @@ those fail on blends. Outside the ranges a `PropertyRangeError` says what the li
 
 from __future__ import annotations
 
-import copy
 import math
+from collections.abc import Callable
 from functools import cache, cached_property
 from typing import TYPE_CHECKING
 
@@ -63,10 +63,15 @@ class Refrigerant(Saturation):
 
     def with_register(self, entry: RegisterEntry) -> Refrigerant:
         """The same refrigerant with another register entry, as a plant states it; see `register.register`."""
-        other = copy.copy(self)
+        other = object.__new__(Refrigerant)
+        other.__dict__.update(self.__dict__)
         other.__dict__.pop("pressure_relative_uncertainty", None)
         other.__dict__["register"] = entry
         return other
+
+    def __reduce__(self) -> tuple[Callable[..., Refrigerant], tuple[str, RegisterEntry]]:
+        """Copied or pickled by name: an equation-of-state object cannot be."""
+        return _again, (self.name, self.register)
 
     # Single phase
 
@@ -330,6 +335,11 @@ def refrigerant(name: str) -> Refrigerant:
 
     known = designation(name)
     return refrigerant(known) if known != name else _make(known)
+
+
+def _again(name: str, entry: RegisterEntry) -> Refrigerant:
+    made = refrigerant(name)
+    return made if made.register == entry else made.with_register(entry)
 
 
 def _make(known: str) -> Refrigerant:

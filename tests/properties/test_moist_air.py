@@ -7,7 +7,7 @@ import math
 import pytest
 
 from commission.properties import PropertyRangeError, moist_air, moist_air_from_enthalpy, saturated_air_at_enthalpy
-from commission.properties.moist_air import dew_point
+from commission.properties.psychrometrics import dew_point
 
 P = 101325.0
 

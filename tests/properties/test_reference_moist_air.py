@@ -7,7 +7,7 @@ import psychrolib
 import pytest
 
 from commission.properties import moist_air, moist_air_from_enthalpy, saturated_air, saturated_air_at_enthalpy
-from commission.properties.moist_air import TRIPLE_POINT, dew_point, saturation_pressure
+from commission.properties.psychrometrics import TRIPLE_POINT, dew_point, saturation_pressure
 
 SEA_LEVEL = 101325.0
 

@@ -221,21 +221,27 @@ def _wet_bulb(T: float, W: float, p: float) -> float:
 
 
 def _root(f: Callable[[float], float], low: float, high: float) -> float | None:
-    """Root of a rising function by false position with bisection where that is slow; None where there is none."""
+    """Root of a rising function by the Illinois variant of false position; None where there is none."""
     f_low, f_high = f(low), f(high)
     if f_low > 0 or f_high < 0:
-        return low if 0 < f_low < 1e-9 else high if -1e-9 < f_high < 0 else None
-    x = low
-    for k in range(120):
-        x = (low + high) / 2 if k % 3 == 2 or f_high == f_low else high - f_high * (high - low) / (f_high - f_low)
+        return low if 0 < f_low < ROUNDING else high if -ROUNDING < f_high < 0 else None
+    if f_low == 0 or f_high == 0:
+        return low if f_low == 0 else high
+    side = 0
+    for _ in range(200):
+        x = (f_high * low - f_low * high) / (f_high - f_low)
         value = f(x)
-        if value <= 0:
-            low, f_low = x, value
-        if value >= 0:
+        if value == 0 or high - low < 1e-9 or abs(value) < 1e-15 * (abs(f_low) + abs(f_high)):
+            return x
+        if value > 0:
             high, f_high = x, value
-        if high - low < 1e-9:
-            break
-    return x
+            f_low = f_low / 2 if side > 0 else f_low
+            side = 1
+        else:
+            low, f_low = x, value
+            f_high = f_high / 2 if side < 0 else f_high
+            side = -1
+    return (low + high) / 2
 
 
 def _refused(message: str) -> PropertyRangeError:

@@ -1,0 +1,106 @@
+"""The shipped series: provenance, agreement with the equations at hand, and what happens where they do not agree."""
+
+from __future__ import annotations
+
+import dataclasses
+import json
+from importlib.resources import files
+from pathlib import Path
+
+import numpy as np
+import pytest
+
+from commission.errors import NotCalculatedError
+from commission.properties import generate_lines, lines, refrigerant
+from commission.properties.coolprop import version
+from commission.properties.generate_lines import build
+from commission.properties.models import model_of, modelled
+from commission.properties.refrigerant import _make
+
+
+def test_every_modelled_refrigerant_has_its_file_with_provenance() -> None:
+    """One file per refrigerant, no other, each says how it was made."""
+    folder = files("commission.properties") / "lines"
+    assert {p.name for p in folder.iterdir()} == {lines.file_name(n) for n in modelled()}
+    for name in modelled():
+        plain = json.loads((folder / lines.file_name(name)).read_text(encoding="utf-8"))
+        assert "commission.properties.generate_lines" in plain["about"]
+        assert plain["property_source"].startswith("CoolProp ")
+
+
+@pytest.mark.parametrize("name", ["R-290", "R-744", "R-454B"])
+def test_the_files_are_what_the_generator_makes(name: str, tmp_path: Path) -> None:
+    """Made anew, the data agree to the last digits that rounding leaves."""
+    generate_lines.main(tmp_path, (name,))
+    shipped, new = lines.read(name), json.loads((tmp_path / lines.file_name(name)).read_text(encoding="utf-8"))
+    assert shipped is not None
+    again = lines.FluidData.from_json(new)
+    for line in ("dew", "bubble"):
+        a, b = getattr(shipped, line).coefficients, getattr(again, line).coefficients
+        assert a == pytest.approx(b, rel=1e-6, abs=1e-3)
+    assert again.T_critical == shipped.T_critical
+    assert again.mole_fractions == pytest.approx(shipped.mole_fractions, abs=1e-12)
+
+
+@pytest.mark.parametrize("name", modelled())
+def test_the_series_follow_the_equation_between_their_nodes(name: str) -> None:
+    """At 25 temperatures: pressure of the equation at the density of the line to 2e-7, enthalpy to 0.2 J/kg."""
+    r = refrigerant(name)
+    for T in np.linspace(r.T_low, 0.99 * r.T_critical, 25):
+        dew = r.dew(float(T))
+        point = r._equation.at(dew.rho, float(T))
+        assert point.p == pytest.approx(dew.p, rel=2e-7)
+        assert point.h == pytest.approx(dew.h, abs=0.2)
+        assert point.s == pytest.approx(dew.s, abs=1e-3)
+        bubble = r.bubble(float(T))
+        point = r._equation.at(bubble.rho, float(T))
+        assert point.h == pytest.approx(bubble.h, abs=0.2)
+        # a liquid's pressure is steep in density: compare in density
+        assert (point.p - bubble.p) / point.p_rho == pytest.approx(0.0, abs=2e-7 * bubble.rho)
+
+
+@pytest.mark.parametrize("name", modelled())
+def test_temperature_and_pressure_of_a_line_are_inverse(name: str) -> None:
+    """Pressure to temperature and back, to 3e-7 K, on both lines from end to end."""
+    r = refrigerant(name)
+    for T in np.linspace(r.T_low, r.T_high, 40):
+        assert r.dew_temperature(r.dew(float(T)).p) == pytest.approx(float(T), abs=3e-7)
+        assert r.bubble_temperature(r.bubble(float(T)).p) == pytest.approx(float(T), abs=3e-7)
+
+
+def test_vectorised_rows_are_the_single_ones() -> None:
+    """The array form of a line gives the same four values."""
+    line = refrigerant("R-454B")._dew
+    T = np.linspace(230.0, 330.0, 7)
+    many = line.rows(T)
+    for k, t in enumerate(T):
+        assert many[:, k] == pytest.approx(line.row(float(t)), rel=1e-12)
+
+
+def test_data_of_another_edition_are_made_anew(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Where the shipped data do not belong to the equation at hand, new ones are made and say which edition."""
+    shipped = lines.read("R-290")
+    assert shipped is not None
+    other = dataclasses.replace(
+        shipped,
+        property_source="CoolProp 0.0.0",
+        dew=dataclasses.replace(shipped.dew, coefficients=shipped.dew.coefficients * (1 + 1e-5)),
+    )
+    monkeypatch.setattr(lines, "read", lambda _name: other)
+    made = _make("R-290")
+    assert made.property_source == f"CoolProp {version()}"
+    assert made.dew(280.0).p == pytest.approx(refrigerant("R-290").dew(280.0).p, rel=1e-9)
+
+
+def test_a_false_solution_is_refused_by_the_generator() -> None:
+    """A critical point that is not that of the fluid breaks a law and is refused."""
+    fluids, fractions, (T, p) = model_of("R-454B")
+    with pytest.raises((NotCalculatedError, np.linalg.LinAlgError)):
+        build("R-454B", fluids, fractions, (T + 12.0, p))
+
+
+def test_a_fluid_without_a_file_is_made_in_memory(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A new refrigerant works before its file is generated."""
+    monkeypatch.setattr(lines, "read", lambda _name: None)
+    made = _make("R-600a")
+    assert made.dew(280.0).p == pytest.approx(refrigerant("R-600a").dew(280.0).p, rel=1e-9)
