@@ -4,6 +4,7 @@ from commission.machine.compressor import Compression, Compressor, EfficiencySha
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
 from commission.machine.head_pressure import HeadPressure
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
+from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
 from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage, SuctionLine
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
@@ -23,6 +24,7 @@ __all__ = [
     "Media",
     "NoSolutionError",
     "OperatingPoint",
+    "PolynomialCompressor",
     "SingleStage",
     "Solution",
     "StatePoint",
@@ -34,7 +36,9 @@ __all__ = [
     "conductance_for",
     "effectiveness",
     "entropic_mean",
+    "in_fahrenheit",
     "leaving_air",
     "liquid_stream",
     "solve",
+    "ten_coefficients",
 ]

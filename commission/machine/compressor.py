@@ -65,7 +65,8 @@ def _work_number(ratio: float, k: float) -> float:
 class Compression:
     """What a compressor does between two states: flow kg/s, electric power W, heat lost by the shell W, enthalpy out.
 
-    `isentropic_work` in J/kg; the efficiencies are those in force, levels included.
+    `isentropic_work` in J/kg; the efficiencies are those in force, levels included; the
+    volumetric one is None where the displacement is not known.
     """
 
     flow: float
@@ -74,7 +75,7 @@ class Compression:
     discharge_enthalpy: float
     isentropic_work: float
     pressure_ratio: float
-    volumetric_efficiency: float
+    volumetric_efficiency: float | None
     isentropic_efficiency: float
 
 
@@ -83,7 +84,8 @@ class Compressor:
     """A displacement compressor.
 
     `displacement` in m3/s at the speed in force; `volumetric_level` and `isentropic_level` multiply the shapes;
-    `shell_loss` is the share of the electric power that leaves through the shell to the surroundings.
+    `shell_loss` is the share of the electric power that leaves through the shell to the surroundings; `speed_loss` the
+    share of the isentropic efficiency that is lost at half speed, in proportion between.
     """
 
     displacement: float
@@ -91,8 +93,11 @@ class Compressor:
     isentropic_level: float
     shape: EfficiencyShape
     shell_loss: float = 0.0
+    speed_loss: float = 0.0
 
-    def compress(self, refrigerant: Refrigerant, suction: State, pressure: float) -> Compression:
+    def compress(
+        self, refrigerant: Refrigerant, suction: State, pressure: float, speed_share: float = 1.0
+    ) -> Compression:
         """Compress from `suction` to `pressure` (Pa).
 
         Raises:
@@ -107,8 +112,9 @@ class Compressor:
         volumetric = self.volumetric_level * self.shape.volumetric(ratio)
         if volumetric <= 0:
             raise NotCalculatedError(f"at a pressure ratio of {ratio:.1f} the compressor delivers no gas")
-        flow = volumetric * self.displacement * suction.rho
-        isentropic = self.isentropic_level * self.shape.isentropic(ratio, work * suction.rho / suction.p, exponent)
+        flow = volumetric * self.displacement * speed_share * suction.rho
+        level = self.isentropic_level * (1 - 2 * self.speed_loss * (1 - speed_share))
+        isentropic = level * self.shape.isentropic(ratio, work * suction.rho / suction.p, exponent)
         power = flow * work / isentropic
         loss = self.shell_loss * power
         enthalpy = suction.h + (power - loss) / flow

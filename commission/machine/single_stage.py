@@ -16,6 +16,7 @@ from commission.machine.compressor import Compression, Compressor
 from commission.machine.exchanger import Exchanger
 from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
+from commission.machine.polynomial import PolynomialCompressor
 from commission.machine.solver import Solution, solve
 from commission.properties import Refrigerant, State
 
@@ -43,7 +44,7 @@ class SingleStage:
     """All parameters of the machine; temperature differences in K. Faults are other values of these parameters."""
 
     refrigerant: Refrigerant
-    compressor: Compressor
+    compressor: Compressor | PolynomialCompressor
     evaporator: Exchanger
     condenser: Exchanger
     superheat: float
@@ -72,6 +73,19 @@ class SingleStage:
     def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
         """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
         return _Circuit(self, media).cycle(evaporating, condensing)
+
+    def compressor_alone(
+        self, evaporating: float, condensing: float, superheat: float, subcooling: float, media: Media
+    ) -> tuple[Compression, float]:
+        """The compressor between two dew points (K), as it is catalogued, and its cooling capacity in W.
+
+        The capacity counts all the superheat to the suction port (EN 12900); there are no line losses.
+        """
+        alone = replace(
+            self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine(), discharge_line_loss=0.0
+        )
+        compression, source, _ = _Circuit(alone, media).cycle(evaporating, condensing)
+        return compression, source
 
     def condensing_unit(
         self, evaporating: float, superheat: float, subcooling: float, media: Media, start: Balance | None = None
@@ -144,7 +158,8 @@ class _Circuit:
         """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
         outlet, suction = self.low_side(evaporating)
         discharge, liquid = self.high_side(condensing)
-        compression = self.machine.compressor.compress(self.machine.refrigerant, suction, discharge)
+        compressor, share = self.machine.compressor, self.media.speed_share
+        compression = compressor.compress(self.machine.refrigerant, suction, discharge, share)
         source = compression.flow * (outlet.h - liquid.h)
         sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
         return compression, source, sink
