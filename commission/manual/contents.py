@@ -14,7 +14,7 @@ from commission.manual.documents import address, copied_files, document_links, o
 from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.paper import paper_style
-from commission.manual.plots import Figure, charts, draw, ph_figure
+from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
 from commission.manual.records_pages import (
     Archive,
     certificates,
@@ -22,6 +22,7 @@ from commission.manual.records_pages import (
     read_archive,
     record_page,
     records_page,
+    series_of,
     visits,
 )
 from commission.manual.saturation import saturation_page
@@ -105,7 +106,9 @@ def _system(
     progress(f"drawing {data.id}")
     weather: tuple[Figure, ...] = charts(data, data.grid, plant.display) if data.grid else ()
     cycle = ph_figure(data)
-    for figure in (*weather, *([cycle] if cycle else [])):
+    found = series_of(data, archive)
+    past = history_figures(data, found, plant.display)
+    for figure in (*weather, *([cycle] if cycle else []), *past):
         for path, svg in draw(figure, store).items():
             texts[path] = svg
             book.add_file(path)
@@ -118,7 +121,7 @@ def _system(
     for sheet in test_sheets(plant, data):
         book.add(sheet)
     book.add(day_sheet(plant, data))
-    book.add(records_page(plant, data, archive))
+    book.add(records_page(plant, data, archive, found, past))
     for record in archive.of(data.id):
         book.add(record_page(plant, data, record, archive))
     for sheet in certificates(plant, data, archive):

@@ -2,20 +2,32 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.errors import NotCalculatedError
-from commission.manual.figures import STYLE_VERSION, Chart, Line, PhDiagram, by_night, draw_chart, draw_ph
+from commission.manual.figures import (
+    STYLE_VERSION,
+    Chart,
+    HistoryChart,
+    Line,
+    PhDiagram,
+    by_night,
+    draw_chart,
+    draw_history,
+    draw_ph,
+)
 from commission.manual.gather import SystemData
 from commission.manual.grid import Grid
 from commission.manual.showing import COVERAGE, label_of, unit_of
 from commission.manual.store import Store, kept
-from commission.quantities import Display, Kind
+from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
-    from commission.prediction import StatePoint
+    from commission.machine import StatePoint
     from commission.properties import Refrigerant
+    from commission.records import Series
 
 
 @dataclass(frozen=True, slots=True)
@@ -25,7 +37,7 @@ class Figure:
     stem: str
     alt: str
     caption: str
-    content: Chart | PhDiagram
+    content: Chart | PhDiagram | HistoryChart
 
 
 _CHARTS: tuple[tuple[str, str, Kind, tuple[tuple[str, str], ...]], ...] = (
@@ -128,10 +140,46 @@ def draw(figure: Figure, store: Store | None) -> dict[str, bytes]:
     import matplotlib
 
     content = figure.content
-    svg = kept(
-        store,
-        (STYLE_VERSION, matplotlib.__version__, content),
-        lambda: draw_chart(content) if isinstance(content, Chart) else draw_ph(content),
-    )
+    svg = kept(store, (STYLE_VERSION, matplotlib.__version__, content), lambda: _drawn(content))
     return {f"{figure.stem}.svg": svg, f"{figure.stem}-night.svg": by_night(svg)}
 
+
+def _drawn(content: Chart | PhDiagram | HistoryChart) -> bytes:
+    if isinstance(content, Chart):
+        return draw_chart(content)
+    return draw_ph(content) if isinstance(content, PhDiagram) else draw_history(content)
+
+
+_FOLLOWED = (
+    "suction_pressure", "discharge_pressure", "compressor_superheat", "subcooling", "discharge_temperature",
+    "evaporator_temperature_difference", "condenser_temperature_difference", "power_input", "cooling_capacity",
+    "heating_capacity",
+)  # fmt: skip
+"""Quantities whose history is drawn: what a fault moves first."""
+
+
+def history_figures(data: SystemData, found: Sequence[Series], display: Display) -> tuple[Figure, ...]:
+    """One chart for each followed quantity that was read at two visits or more."""
+    figures = []
+    for one in found:
+        if one.quantity not in _FOLLOWED or len(one.points) < 2:
+            continue
+        kind = NOMENCLATURE[one.quantity].kind
+        unit = display.spread_unit(kind)
+        label = label_of(one.quantity)
+        chart = HistoryChart(
+            title=f"{data.name}: {label.lower()}, reading minus expected",
+            y_label=f"{label}: reading minus expected" + (f", {unit}" if unit else ""),
+            days=tuple(p.started.date() for p in one.points),
+            deviations=tuple(_spread(display, p.deviation, kind) for p in one.points),
+            half=tuple(_spread(display, p.expanded, kind) for p in one.points),
+            significant=tuple(p.significant for p in one.points),
+        )
+        alt = f"Chart: {label.lower()}, reading minus expected at {len(one.points)} visits. The table holds the numbers."
+        figures.append(Figure(f"figures/{data.slug}-history-{one.quantity.replace('_', '-')}", alt, "", chart))
+    return tuple(figures)
+
+
+def _spread(display: Display, value: float, kind: Kind) -> float:
+    """A difference of this kind in the unit shown."""
+    return display.convert(value, kind) - display.convert(0.0, kind)

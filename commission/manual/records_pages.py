@@ -8,13 +8,14 @@ from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.plots import Figure
 from commission.manual.showing import label_of, unit_of
 from commission.manual.states import Visit
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
-    from commission.records.filed import FiledRecord, FrozenDeviation, FrozenGuarantee, FrozenReading, RecordsFolder
-    from commission.records.items import OpenItem
+    from commission.records import FiledRecord, OpenItem, RecordsFolder, Series
+    from commission.records.filed import FrozenDeviation, FrozenGuarantee, FrozenReading
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,9 +35,7 @@ class Archive:
 
 def read_archive(plant: PlantData) -> Archive:
     """Reads `records/`; a damaged record is named and keeps no other from being shown."""
-    from commission.records.filed import read_folder
-    from commission.records.items import open_items
-    from commission.records.read import records_folder
+    from commission.records import open_items, read_folder, records_folder
 
     folder = records_folder(plant.loaded)
     found = read_folder(folder)
@@ -78,9 +77,17 @@ def when(record: FiledRecord) -> str:
 VERDICT_CLASS = {"conforming": "good", "not conforming": "danger", "undecided": "care", "none": ""}
 
 
-def records_page(plant: PlantData, data: SystemData, archive: Archive) -> Sheet:
+def series_of(data: SystemData, archive: Archive) -> tuple[Series, ...]:
+    """The deviations of each quantity over the visits, as they were frozen."""
+    from commission.records import series
+
+    return series(archive.folder.records, data.id)
+
+
+def records_page(
+    plant: PlantData, data: SystemData, archive: Archive, found: tuple[Series, ...], figures: tuple[Figure, ...]
+) -> Sheet:
     """The visits to one system, and how each reading stood against the expectation at its own condition."""
-    records = archive.of(data.id)
     rows = [
         {
             "page": archive.pages[r.id],
@@ -88,32 +95,53 @@ def records_page(plant: PlantData, data: SystemData, archive: Archive) -> Sheet:
             "when": when(r),
             "mode": r.file.mode,
             "verdict": r.verdict,
-            "sentence": r.filed.sentence,
             "corrected_by": archive.corrected.get(r.id),
             "sound": r.seal_holds,
         }
-        for r in records
+        for r in archive.of(data.id)
     ]
     context = {
         "rows": list(reversed(rows)),
-        "history": _history(plant.display, [r for r in records if r.id not in archive.corrected]),
+        "history": _history(plant.display, found),
+        "charts": figures,
         "damaged": [str(p) for p in archive.folder.damaged],
         "drafts": archive.folder.drafts,
         "day_sheet": data.page("day-sheet"),
         "checklist": data.page("checklist"),
+        **_drift(plant, data, found),
     }
     return Sheet(data.page("records"), "Records", data.group, "records.html", context, data.kicker)
 
 
-def _history(display: Display, records: list[FiledRecord]) -> dict[str, Any] | None:
+def _drift(plant: PlantData, data: SystemData, found: tuple[Series, ...]) -> dict[str, Any]:
+    """What has drifted since the baseline, and what kind of cause fits."""
+    from commission.records import families, find_drifts
+
+    drifted = find_drifts(found, plant.display)
+    valve = data.system.expansion is not None and data.system.expansion.device.endswith("valve")
+    kinds = families(found, valve=valve, receiver=data.system.receiver is not None) if drifted else ()
+    return {
+        "drifts": drifted,
+        "families": [(f.name, f.look_at, [label_of(k).lower() for k in f.agree]) for f in kinds],
+    }
+
+
+def _history(display: Display, found: tuple[Series, ...]) -> dict[str, Any] | None:
     """Deviations over the visits, one row for each quantity that was read at least twice."""
-    heads = [r.started.date().isoformat() for r in records]
+    several = [s for s in found if len(s.points) >= 2]
+    if not several:
+        return None
+    visits_at = sorted({(p.started, p.record) for s in several for p in s.points})
     rows = []
-    for key in NOMENCLATURE:
-        cells = [r.filed.deviations.get(key) for r in records]
-        if sum(c is not None for c in cells) >= 2:
-            rows.append((label_of(key), [_deviation_text(display, key, c) for c in cells]))
-    return {"heads": heads, "rows": rows} if rows else None
+    for s in several:
+        by_record = {p.record: p for p in s.points}
+        cells = [
+            (_plus_minus(display, s.quantity, p.deviation, p.expanded), p.significant) if p else ("–", False)
+            for _, record in visits_at
+            for p in [by_record.get(record)]
+        ]
+        rows.append((label_of(s.quantity), cells))
+    return {"heads": [moment.date().isoformat() for moment, _ in visits_at], "rows": rows}
 
 
 def _signed(display: Display, kind: Kind, value: float) -> str:
@@ -121,11 +149,9 @@ def _signed(display: Display, kind: Kind, value: float) -> str:
     return text if text.startswith("−") or float(text) == 0 else f"+{text}"
 
 
-def _deviation_text(display: Display, key: str, d: FrozenDeviation | None) -> str:
-    if d is None:
-        return "–"
+def _plus_minus(display: Display, key: str, deviation: float, expanded: float) -> str:
     kind = NOMENCLATURE[key].kind
-    return f"{_signed(display, kind, d.deviation)} ± {display.spread(d.expanded, kind)} {display.spread_unit(kind)}".strip()
+    return f"{_signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
 
 
 def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
@@ -271,8 +297,11 @@ def open_items_page(plant: PlantData, archive: Archive) -> Sheet:
     names = {d.id: d.name for d in plant.systems}
 
     def view(i: OpenItem) -> dict[str, Any]:
+        short = len(i.what) <= 90
         return {
             "item": i,
+            "head": i.what if short else label_of(i.line or "as found"),
+            "text": None if short else i.what,
             "system": names.get(i.system, i.system),
             "found": archive.pages.get(i.found_in),
             "closed": archive.pages.get(i.closed_in) if i.closed_in else None,
