@@ -147,13 +147,13 @@ def _guarantees(facts: Facts) -> str:
     return "; ".join(texts) or "nothing is guaranteed; the sheet shows deviations from the expected values, no verdict"
 
 
-def _charge_limits(facts: Facts) -> str | None:
+def _charge_limits(facts: Facts) -> str:
     texts = []
     for space in charge_limits(facts.loaded, facts.system_id, facts.substance):
         if space.lowest is not None and space.lowest.value is not None:
             shown = facts.display.text(space.lowest.value.value, Kind.MASS)
             texts.append(f"{space.name} {shown} by {space.lowest.document}, {space.lowest.edition}")
-    return "; ".join(texts) or None
+    return "; ".join(texts) or "none by room size (see the page on charge)"
 
 
 def _person(role: str) -> Callable[[Facts, str], str | None]:

@@ -220,7 +220,7 @@ def _words(
 
 
 EMERGENCY_NUMBERS = {"EU 2024/573": "112", "US 40 CFR 82 and 84": "911"}
-"""By the law the plant is under: 112 is the European emergency number (Directive (EU) 2018/1972), 911 the one of the US."""
+"""By the law the plant is under: 112 in Europe (Directive (EU) 2018/1972), 911 in the United States."""
 
 
 def _emergency_number(loaded: LoadedPlant) -> str:

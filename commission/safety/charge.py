@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 from commission.quantities import Explained, Input, Kind
+from commission.safety.alternatives import alternative_limits
 from commission.safety.charge_en378 import en378_limits
 from commission.safety.charge_others import ashrae15_limit, commercial_limit, heat_pump_limit
 from commission.safety.limits import ChargeLimit, Situation
@@ -23,7 +24,8 @@ ACCESS: dict[str, Literal["a", "b", "c"]] = {"general public": "a", "supervised"
 @dataclass(frozen=True, slots=True)
 class SpaceCharge:
     """The limits of one space. `lowest` is the smallest that applies, `over` whether the charge exceeds it (None where
-    charge or limits are not known); `concentration` is what the whole charge gives in this space, kg/m³."""
+    charge or limits are not known); `concentration` is what the whole charge gives in this space, kg/m³. `alternatives`
+    are limits that other provisions allow with the measures they name; they never lower or raise `lowest`."""
 
     space_id: str
     name: str
@@ -36,6 +38,7 @@ class SpaceCharge:
     concentration: Explained | None
     advice: str
     notes: tuple[str, ...] = ()
+    alternatives: tuple[ChargeLimit, ...] = ()
 
 
 def charge_limits(loaded: LoadedPlant, system_id: str, substance: Substance) -> tuple[SpaceCharge, ...]:
@@ -89,7 +92,20 @@ def _space(
     if volume and system.charge is not None:
         concentration = Explained("leak_concentration", system.charge / volume, None, "leak_concentration", inputs)
     notes = () if volume else ("floor area and height are needed for most limits: write them under spaces",)
-    return SpaceCharge(space_id, name, holds, volume, limits, lowest, system.charge, over, concentration, ADVICE, notes)
+    return SpaceCharge(
+        space_id,
+        name,
+        holds,
+        volume,
+        limits,
+        lowest,
+        system.charge,
+        over,
+        concentration,
+        ADVICE,
+        notes,
+        alternative_limits(situation),
+    )
 
 
 def _inputs(loaded: LoadedPlant, system_id: str, space_id: str, space: Space) -> tuple[Input, ...]:

@@ -31,21 +31,26 @@ def place(loaded: LoadedPlant, path: str) -> str:
 
 
 def hottest_ambient(loaded: LoadedPlant, system_id: str) -> tuple[float, str] | None:
-    """The hottest air stated for a system in K, with its place: design weather, or a warmer rated or design point."""
+    """The hottest air to design for in K, with its place.
+
+    The warmer of design weather and, for a condenser in air, the system's own design condition; without both the
+    warmest rated point.
+    """
+    system = loaded.system(system_id)
     found: list[tuple[float, str]] = []
     summer = loaded.plant.plant.climate.summer_dry_bulb
     if summer is not None:
         found.append((summer, place(loaded, "plant.climate.summer_dry_bulb")))
-    system = loaded.system(system_id)
-    if system.heat_sink.medium == "air" and system.duty not in ("space_heating", "water_heating"):
+    if system.heat_sink.medium != "air" or system.duty in ("space_heating", "water_heating"):
+        return max(found, default=None)
+    if system.design is not None and system.design.heat_sink_inlet_temperature is not None:
+        origin = place(loaded, f"systems.{system_id}.design.heat_sink_inlet_temperature")
+        found.append((system.design.heat_sink_inlet_temperature, origin))
+    if not found:
         inlets = [p.heat_sink_inlet_temperature for p in system.rated_points]
         if system.condensing_unit is not None:
             inlets += [p.heat_sink_inlet_temperature for p in system.condensing_unit.rated_points]
-        origin = f"rated point, {place(loaded, f'systems.{system_id}')}"
-        found += [(inlet, origin) for inlet in inlets if inlet is not None]
-        if system.design is not None and system.design.heat_sink_inlet_temperature is not None:
-            origin = place(loaded, f"systems.{system_id}.design.heat_sink_inlet_temperature")
-            found.append((system.design.heat_sink_inlet_temperature, origin))
+        found = [(t, f"rated point, {place(loaded, f'systems.{system_id}')}") for t in inlets if t is not None]
     return max(found, default=None)
 
 

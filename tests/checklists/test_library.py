@@ -1,0 +1,185 @@
+"""The shipped library: complete, single, and in an order that hurts nobody."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+
+from commission.checklists import Item, Stage
+from commission.checklists.library import CheckedItem, library
+from commission.checklists.names import WORDS, names
+from commission.checklists.phrases import PHRASES
+
+SYSTEMS = ("freezer", "split", "heat-pump", "chiller", "water-heater", "tower-chiller")
+Stages = Callable[[str], tuple[Stage, ...]]
+
+
+def every() -> list[CheckedItem]:
+    """All items of the library."""
+    return [item for stage in library() for item in stage.items]
+
+
+def order(stages: tuple[Stage, ...]) -> list[str]:
+    """Item ids in the order of work."""
+    return [item.id for stage in stages for item in stage.items]
+
+
+def items(stages: tuple[Stage, ...]) -> dict[str, Item]:
+    """Items by id."""
+    return {item.id: item for stage in stages for item in stage.items}
+
+
+def test_ids_are_unique_and_named_after_their_stage() -> None:
+    """An answer in a record is found by its id for twenty years."""
+    ids = [item.entry.id for item in every()]
+    assert len(ids) == len(set(ids))
+    for stage in library():
+        for item in stage.items:
+            assert item.entry.id.startswith(f"{stage.id}.")
+
+
+def test_every_item_has_a_source() -> None:
+    """A document, the plant itself, or common practice."""
+    for item in every():
+        assert item.entry.source.strip()
+
+
+def test_no_two_items_ask_for_the_same_act() -> None:
+    """Two items that say the same are a defect."""
+    acts = ["".join(c for c in item.entry.do.lower() if c.isalnum()) for item in every()]
+    assert len(acts) == len(set(acts))
+
+
+def test_acts_are_plain_imperatives() -> None:
+    """One sentence that begins with a verb and ends with a full stop, short enough for a tablet."""
+    for item in every():
+        assert item.entry.do.endswith("."), item.entry.id
+        assert item.entry.do.split()[0].lower() not in {"the", "a", "is", "are", "check", "ensure", "verify"}, item.entry.id
+        assert len(item.entry.do) < 170, item.entry.id
+
+
+def test_a_reading_says_what_it_must_be() -> None:
+    """An item that asks for a value says what it must read, or how it is used."""
+    for item in every():
+        if item.entry.answer == "value":
+            assert item.entry.must_read is not None or item.entry.how is not None, item.entry.id
+
+
+def test_names_of_derived_facts_all_have_values() -> None:
+    """The table of names and the table of values hold the same keys."""
+    assert set(WORDS) == set(PHRASES)
+    assert set(WORDS) <= set(names())
+
+
+BEFORE = [
+    ("readiness.pressure-papers", "strength.hold"),
+    ("installation.lowest-pressure", "strength.hold"),
+    ("strength.isolate", "strength.hold"),
+    ("strength.hold", "strength.bubbles"),
+    ("strength.end-pressure", "evacuation.level"),
+    ("evacuation.reconnect", "evacuation.level"),
+    ("evacuation.level", "evacuation.rise"),
+    ("evacuation.rise", "charging.weigh"),
+    ("charging.weigh", "charging.leak-search"),
+    ("charging.leak-search", "first-start.current"),
+    ("electrical.report", "electrical.voltage"),
+    ("electrical.heater", "first-start.current"),
+    ("electrical.rotation", "first-start.current"),
+    ("safety.high-pressure", "first-start.current"),
+    ("safety.high-pressure-sealed", "first-start.current"),
+    ("safety.release", "first-start.current"),
+    ("safety.trapped-alarm", "first-start.current"),
+    ("installation.floor-heating", "first-start.pull-down"),
+    ("first-start.valves", "first-start.current"),
+    ("first-start.current", "live-trips.high-pressure"),
+    ("safety.high-pressure", "live-trips.high-pressure"),
+    ("live-trips.high-pressure", "performance.discharge-pressure"),
+    ("trim.superheat", "performance.suction-pressure"),
+    ("performance.sheet", "handover.settings"),
+    ("flows.source-flow", "charging.weigh"),
+    ("flows.source-switch", "first-start.current"),
+    ("flows.sink-flow", "first-start.current"),
+    ("flows.antifreeze-source", "charging.weigh"),
+    ("safety.interlock", "first-start.current"),
+    ("charging.detector-people", "charging.weigh"),
+    ("charging.detector", "charging.cylinder"),
+    ("charging.vapour-first", "charging.weigh"),
+    ("readiness.breathing", "charging.weigh"),
+    ("installation.ventilation", "charging.weigh"),
+    ("installation.relief-outlet", "charging.weigh"),
+    ("flows.store-filled", "controls.hygiene"),
+    ("safety.store-cut-out", "controls.hygiene"),
+]
+"""Pairs whose order keeps people or the compressor whole."""
+
+
+@pytest.mark.parametrize("system_id", SYSTEMS)
+def test_the_order_is_safe(yard_stages: Stages, system_id: str) -> None:
+    """Pressure test before evacuation before charge before start; static proof before the first start; flow first."""
+    found = order(yard_stages(system_id))
+    for first, later in BEFORE:
+        if first in found and later in found:
+            assert found.index(first) < found.index(later), (first, later)
+
+
+def test_the_order_of_the_cold_room_is_safe(cold_room: tuple[Stage, ...]) -> None:
+    """The same for the example, where a flammable refrigerant changes the order."""
+    found = order(cold_room)
+    for first, later in BEFORE:
+        if first in found and later in found:
+            assert found.index(first) < found.index(later), (first, later)
+
+
+def test_every_pair_of_the_order_names_items_that_exist() -> None:
+    """A rule about an item that was renamed would prove nothing."""
+    ids = {item.entry.id for item in every()}
+    assert {word for pair in BEFORE for word in pair} <= ids
+
+
+def test_a_flammable_refrigerant_changes_the_order(cold_room: tuple[Stage, ...], yard_stages: Stages) -> None:
+    """Electrical tests that can spark come before the refrigerant; elsewhere they come after charging."""
+    propane, blend = order(cold_room), order(yard_stages("freezer"))
+    assert propane.index("electrical.report") < propane.index("charging.weigh")
+    assert blend.index("electrical.report") > blend.index("charging.weigh")
+
+
+def test_the_cold_room_has_the_right_size(cold_room: tuple[Stage, ...]) -> None:
+    """A small cold room with a flammable refrigerant takes 40 to 60 items."""
+    assert 40 <= len(order(cold_room)) <= 60
+
+
+def test_the_cold_room_has_nothing_that_does_not_apply(cold_room: tuple[Stage, ...]) -> None:
+    """No item of water, glycol, ammonia, carbon dioxide, stores, back-ups or freezers, and none shown for want of a fact."""
+    found = items(cold_room)
+    for word in ("flows.", "fan-delay", "floor-heating", "toxic", "water", "back-up", "hygiene", "gas-cooler", "detector-people"):
+        assert not [i for i in found if word in i], word
+    assert not [item.id for item in found.values() if item.note]
+    assert not [item.id for item in found.values() if item.must_read and item.must_read.missing]
+
+
+@pytest.mark.parametrize("system_id", SYSTEMS)
+def test_a_list_holds_each_act_once(yard_stages: Stages, system_id: str) -> None:
+    """Filled in, no two items of one list read the same."""
+    acts = [item.do for stage in yard_stages(system_id) for item in stage.items]
+    assert len(acts) == len(set(acts))
+
+
+@pytest.mark.parametrize(
+    ("system_id", "has", "has_not"),
+    [
+        ("freezer", ("installation.floor-heating", "installation.relief-port", "controls.defrost-end", "first-start.suction-limit", "electrical.rotation", "charging.liquid-only", "handover.leak-date", "safety.release"), ("charging.detector", "installation.zone", "flows.source-flow")),
+        ("split", ("installation.drain", "readiness.air-report", "controls.condensate-pump", "charging.detector", "trim.subcooling", "handover.log-book"), ("safety.release", "first-start.oil", "live-trips.pump-down", "electrical.rotation")),
+        ("heat-pump", ("installation.zone", "installation.outdoor-drain", "season.frost", "controls.curve", "controls.back-up", "charging.sealed-charge", "safety.high-pressure-sealed", "performance.noise-night"), ("strength.hold", "evacuation.level", "charging.weigh", "performance.suction-pressure", "trim.superheat")),
+        ("chiller", ("readiness.breathing", "readiness.shower", "charging.detector-people", "installation.steel-only", "installation.ventilation", "installation.two-relief", "flows.source-switch", "safety.freeze", "evacuation.twice", "flows.antifreeze-source"), ("evacuation.rise", "charging.detector", "safety.release", "handover.leak-date")),
+        ("water-heater", ("charging.vapour-first", "safety.relief-each-part", "controls.hygiene", "controls.mixing", "installation.unvented", "safety.store-cut-out", "flows.store-filled", "trim.gas-cooler-pressure"), ("electrical.heater", "charging.liquid-only", "charging.detector", "handover.leak-date")),
+        ("tower-chiller", ("flows.tower-hygiene", "safety.interlock", "electrical.rotation", "handover.leak-date", "installation.relief-outlet"), ("charging.detector", "readiness.breathing", "installation.two-relief")),
+    ],
+)  # fmt: skip
+def test_what_hurts_people_is_on_the_list_and_nothing_else(
+    yard_stages: Stages, system_id: str, has: tuple[str, ...], has_not: tuple[str, ...]
+) -> None:
+    """Refrigerant, duty, store, defrost and seal decide what stands on a list."""
+    found = order(yard_stages(system_id))
+    assert not set(has) - set(found)
+    assert not set(has_not) & set(found)

@@ -1,0 +1,94 @@
+"""The emergency card: the right words for the hazard, and the plant's own text."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+
+from commission.description import LoadedPlant
+from commission.errors import InputError
+from commission.properties import refrigerant
+from commission.quantities import Display
+from commission.safety import EmergencyCard, emergency_card, hazards, substance_of
+
+Plants = Callable[..., LoadedPlant]
+
+
+def card(loaded: LoadedPlant) -> EmergencyCard:
+    """The card of the one system."""
+    substance = substance_of(refrigerant(loaded.system("one").refrigerant))
+    return emergency_card(loaded, "one", substance, Display("metric", loaded.barometric_pressure))
+
+
+def text(found: EmergencyCard) -> str:
+    """All lines of a card."""
+    return "\n".join(line for section in found.sections for line in section.lines)
+
+
+def test_propane_card_warns_of_sparks(plant: Plants) -> None:
+    """A flammable refrigerant: no switch, no flame; a walk-in room: open from outside."""
+    found = text(card(plant()))
+    assert "0.45 kg" in found
+    assert "Touch no switch" in found
+    assert "cold room" in found
+    assert "112" in found
+    assert "Ammonia" not in found
+
+
+def test_ammonia_card_carries_the_levels_of_people(plant: Plants) -> None:
+    """300 ppm is immediately dangerous (NIOSH); the 30 000 ppm of equipment protects no one and is not on the door."""
+    found = text(card(plant(refrigerant="R-717", charge="40 kg")))
+    assert "300 ppm" in found
+    assert "30,000 ppm" not in found
+    assert "poisonous" in found
+
+
+def test_carbon_dioxide_card_says_that_it_has_no_smell(plant: Plants) -> None:
+    """Carbon dioxide: 40 000 ppm immediately dangerous, and nothing to smell."""
+    found = text(card(plant(refrigerant="R-744", charge="8 kg")))
+    assert "40,000 ppm" in found
+    assert "no smell" in found
+    assert "Touch no switch" not in found
+
+
+def test_every_refrigerant_says_what_it_does_to_people() -> None:
+    """No refrigerant of the register comes without an effect on people."""
+    from commission.properties.register import register
+
+    for name in register():
+        substance = substance_of(refrigerant(name))
+        assert len(hazards(substance).effects) >= 3
+
+
+def test_the_plant_can_bring_its_own_language(plant: Plants) -> None:
+    """emergency_card.yaml in the plant folder replaces the text whole, with the same words filled in."""
+    loaded = plant()
+    own = "title: Wenn Gas austritt\nlanguage: de\nsections:\n  - title: Zuerst\n    lines:\n      - 'Alle hinaus: {charge} {refrigerant}'\n"
+    (loaded.folder / "emergency_card.yaml").write_text(own, encoding="utf-8")
+    found = card(loaded)
+    assert found.replaced
+    assert found.language == "de"
+    assert text(found) == "Alle hinaus: 0.45 kg R-290 (safety class A3)"
+
+
+@pytest.mark.parametrize(
+    ("line", "words"),
+    [
+        ("'{chargge}'", "chargge"),
+        ("'{charge.__class__}'", "charge.__class__"),
+        ("{text: hello, for: [flamable]}", "flamable"),
+        ("'{unclosed'", "unclosed"),
+    ],
+)
+def test_a_wrong_word_in_the_own_card_is_an_error_with_its_line(plant: Plants, line: str, words: str) -> None:
+    """Unknown words and classes are refused with file, line and what is allowed; no text reaches into an object."""
+    loaded = plant()
+    own = f"title: Own\nsections:\n  - title: First\n    lines:\n      - {line}\n"
+    (loaded.folder / "emergency_card.yaml").write_text(own, encoding="utf-8")
+    with pytest.raises(InputError) as caught:
+        card(loaded)
+    problem = caught.value.problems[0]
+    assert (problem.file, problem.line) == ("emergency_card.yaml", 5)
+    assert words in problem.message
+    assert problem.allowed
