@@ -42,6 +42,15 @@ def test_every_rule_is_complete_and_unique() -> None:
         assert "Source:" in (function.__doc__ or "")
 
 
+def test_every_rule_has_a_test() -> None:
+    """Each rule is called by name in a test of this folder, where it must fire once and stay silent once."""
+    written = "".join(path.read_text(encoding="utf-8") for path in Path(__file__).parent.glob("test_*.py"))
+    for rule in rules():
+        function = rule.of_plant or rule.of_system
+        assert function is not None
+        assert f"{function.__module__.rpartition('.')[2]}.{function.__name__}(" in written
+
+
 def test_every_threshold_is_used_and_sourced() -> None:
     """A threshold that no rule reads is dead, and one without source or mark is no knowledge."""
     code = "".join(path.read_text(encoding="utf-8") for path in LOGIC.rglob("*.py"))
@@ -163,6 +172,7 @@ def test_what_was_not_calculated_on_a_hot_day(facts: Facts) -> None:
     model: Any = SimpleNamespace()
     failed = Outlook("on the hottest day of the site", None, "the condenser has no balance there")
     here = replace(here, model=model, outlooks={**here.outlooks, "hottest": failed})
+    assert not list(calculated.not_calculated(replace(facts(expected={"design": {}}), model=model)))
     (remark,) = calculated.not_calculated(here)
     assert remark.title == (
         "Chiller one on the hottest day of the site: not calculated: because the condenser has no balance there"
