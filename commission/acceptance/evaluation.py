@@ -9,20 +9,22 @@ from functools import partial
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Measured
-from commission.acceptance.derived import Derived, derive, line_loss, ratio
-from commission.acceptance.expectation import Deviation, Expectation, deviation, expect, model_budget
+from commission.acceptance.closure import Closure, closures
+from commission.acceptance.derived import Derived, derive, less, ratio
+from commission.acceptance.expectation import Deviation, Expectation, deviation, expect
 from commission.acceptance.impossible import Impossible, impossible
 from commission.acceptance.instruments import Reading, measure
+from commission.acceptance.route_inputs import RouteInputs, from_sheet, live
 from commission.acceptance.routes import (
-    SHELL,
     Refusal,
     Route,
     RouteResult,
+    Side,
     air_side,
     compressor_heat_balance,
     compressor_power,
+    heat_meter,
     liquid_side,
-    shell_share,
 )
 from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE
@@ -30,6 +32,7 @@ from commission.quantities import NOMENCLATURE
 if TYPE_CHECKING:
     from commission.acceptance.sheet import TestSheet
     from commission.description import LoadedPlant
+    from commission.description.model import Medium
     from commission.prediction import Prediction, SystemModel
 
 BEST_FIRST = ("liquid side", "compressor heat balance", "air side")
@@ -42,7 +45,8 @@ class Evaluation:
 
     `conditions` are those at which the model was asked; `measured` the readings with their budgets; `derived` what was
     calculated from them, capacities and COPs by the best route included; `routes` all routes that could be used,
-    `refusals` those that could not; `not_judged` gives the reason for each reading that has no deviation.
+    `refusals` those that could not, `closures` holds routes against each other; `not_judged` gives the reason for each
+    reading that has no deviation.
     """
 
     conditions: Mapping[str, Measured]
@@ -55,6 +59,8 @@ class Evaluation:
     impossible: tuple[Impossible, ...]
     not_judged: Mapping[str, str]
     warnings: tuple[str, ...]
+    closures: tuple[Closure, ...]
+    evaporator_fan: Measured | None
     prediction: Prediction | None = field(default=None, compare=False)
 
     def capacity(self, key: str, route: str | None = None) -> RouteResult:
@@ -86,8 +92,12 @@ class Evaluation:
             if "power_input" not in self.measured:
                 raise NotCalculatedError("it needs a reading of power input")
             return ratio(key, capacity.measured, self.measured["power_input"]).measured, capacity.route
-        found = self.capacity(key, route)
-        return found.measured, found.route
+        found = self.capacity("cooling_capacity" if key == "net_cooling_capacity" else key, route)
+        if key != "net_cooling_capacity":
+            return found.measured, found.route
+        if self.evaporator_fan is None:
+            raise NotCalculatedError("the power of the evaporator fan, which is to be deducted, is not known")
+        return less(key, found.measured, self.evaporator_fan), found.route
 
 
 def evaluate(
@@ -115,10 +125,11 @@ def evaluate(
     if prediction is not None:
         warnings += prediction.warnings
         warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
-    shell = _shell(loaded, model)
+    inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet)
     derived = dict(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
     have = {**measured, **{k: d.measured for k, d in derived.items()}}
-    routes, refusals = _routes(loaded, model, have, prediction, shell, upsets)
+    power = compressor_power(have, inputs.fans)
+    routes, refusals = _routes(loaded, model, have, inputs, power, upsets)
     derived.update(_capacities(routes, have))
     have.update({k: d.measured for k, d in derived.items()})
     expectations = _expectations(model, used, sheet, prediction, why, not_judged)
@@ -132,8 +143,8 @@ def evaluate(
             )
     return Evaluation(
         used, measured, derived, tuple(routes), tuple(refusals), expectations, deviations,
-        impossible(model.refrigerant, _independent(have, routes), shell), not_judged, tuple(dict.fromkeys(warnings)),
-        prediction,
+        impossible(model.refrigerant, _independent(have, routes, power), inputs.shell), not_judged,
+        tuple(dict.fromkeys(warnings)), closures(routes, power, inputs.shell), inputs.evaporator_fan, prediction,
     )  # fmt: skip
 
 
@@ -195,33 +206,18 @@ def _safely(make: Callable[[], Mapping[str, Derived]], not_judged: dict[str, str
         return {}
 
 
-def _shell(loaded: LoadedPlant, model: SystemModel) -> Measured:
-    found = model.assumptions.get(SHELL) or loaded.assumptions(model.system_id).get(SHELL)
-    return shell_share(found.value, found.standard_uncertainty, found.source) if found else shell_share()
-
-
 def _routes(
     loaded: LoadedPlant,
     model: SystemModel,
     have: Mapping[str, Measured],
-    prediction: Prediction | None,
-    shell: Measured,
+    inputs: RouteInputs,
+    power: Measured | None,
     upsets: Collection[str],
 ) -> tuple[list[RouteResult], list[Refusal]]:
     """Every route to every capacity: what it gives, or why it is refused."""
     system = loaded.system(model.system_id)
-    fans = gain = None
-    if prediction is not None and "fan_power" in prediction.expected:
-        budget = model_budget(model, prediction, "fan_power")
-        fans = Measured("fan_power", prediction.expected["fan_power"].value, budget)
-    if prediction is not None and {"suction_temperature", "evaporating_temperature", "superheat"} <= set(
-        prediction.expected
-    ):
-        signs = {"suction_temperature": 1.0, "evaporating_temperature": -1.0, "superheat": -1.0}
-        gain = line_loss(model, prediction, signs, "suction_pressure", 0.0, 0.0).measured
-    power = compressor_power(have, fans)
-    inputs = {**have, **({"compressor_power": power} if power else {})}
-    results: list[RouteResult] = []
+    states = {**have, **({"compressor_power": power} if power else {})}
+    results = [heat_meter(have[key]) for key in ("cooling_capacity", "heating_capacity") if key in have]
     refusals: list[Refusal] = []
 
     def attempt(route: Route, key: str, make: Callable[[], RouteResult]) -> None:
@@ -231,16 +227,19 @@ def _routes(
             refusals.append(Refusal(route, key, str(error)))
 
     balance = partial(
-        compressor_heat_balance, model.refrigerant, inputs, shell=shell, line_gain=gain,
+        compressor_heat_balance, model.refrigerant, states, shell=inputs.shell, line_gain=inputs.gain,
         compressor=system.compressor.type, upsets=upsets,
     )  # fmt: skip
-    for key in ("cooling_capacity", "heating_capacity"):
-        attempt("compressor heat balance", key, partial(balance, key=key))
-    attempt("liquid side", "cooling_capacity", lambda: liquid_side(system.heat_source, "source", have))
-    attempt("liquid side", "heating_capacity", lambda: liquid_side(system.heat_sink, "sink", have))
     air = loaded.barometric_pressure
-    attempt("air side", "cooling_capacity", lambda: air_side(system.heat_source, "source", air, have))
-    attempt("air side", "heating_capacity", lambda: air_side(system.heat_sink, "sink", air, have))
+    sides: tuple[tuple[str, Side, Medium], ...] = (
+        ("cooling_capacity", "source", system.heat_source),
+        ("heating_capacity", "sink", system.heat_sink),
+    )
+    for key, side, medium in sides:
+        attempt("compressor heat balance", key, partial(balance, key=key))
+        if not any(r.route == "liquid side" and r.measured.key == key for r in results):
+            attempt("liquid side", key, partial(liquid_side, medium, side, have))
+        attempt("air side", key, partial(air_side, medium, side, air, have))
     return results, refusals
 
 
@@ -259,8 +258,12 @@ def _capacities(routes: Iterable[RouteResult], have: Mapping[str, Measured]) -> 
             yield cop, ratio(cop, best.measured, have["power_input"])
 
 
-def _independent(have: Mapping[str, Measured], routes: Iterable[RouteResult]) -> Mapping[str, Measured]:
+def _independent(
+    have: Mapping[str, Measured], routes: Iterable[RouteResult], power: Measured | None
+) -> Mapping[str, Measured]:
     """The readings, with both capacities only where two different routes gave them: one route closes by itself."""
+    routes = list(routes)
+    have = {**have, **({"compressor_power": power} if power is not None else {})}
     by_key = {
         key: [r.route for r in routes if r.measured.key == key] for key in ("cooling_capacity", "heating_capacity")
     }

@@ -10,8 +10,9 @@ from typing import TYPE_CHECKING, Any
 from commission.acceptance.budget import Measured
 from commission.acceptance.choosing import choose_instrument
 from commission.acceptance.grid import Axis, interpolate, middles, points
-from commission.acceptance.guarantee import Carried, Terms, carry, terms_of
+from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
 from commission.acceptance.instruments import Reading, measure
+from commission.acceptance.route_inputs import live
 from commission.acceptance.sheet import Target, TestSheet
 from commission.errors import InputError, NotCalculatedError, Problem, nearest
 from commission.quantities import NOMENCLATURE, Kind
@@ -80,6 +81,7 @@ def make_sheet(
         {name: in_words(loaded.plant.instruments[name]) for name in used},
         {k: a.value for k, a in sorted(model.assumptions.items())},
         steadiness,
+        live(loaded, model, middle[len(middle) // 2]).frozen(),
     )
 
 
@@ -161,11 +163,16 @@ def _guarantee_targets(
     between: Sequence[Mapping[str, float]],
     centre: Mapping[str, float],
 ) -> list[Target]:
+    from commission.prediction.building import boundary
+
     system = loaded.system(model.system_id)
     held = {k: v for k, v in model.rated_condition.items() if k not in {a.key for a in axes}}
     targets = []
     for guarantee in system.guarantee:
         terms = terms_of(guarantee)
+        differs = boundary_differs(terms, boundary(model.facts))
+        if differs is not None:
+            raise NotCalculatedError(differs)
         at = _carrier(terms, model, loaded, held)
         carried = [at(point) for point in where]
         values = tuple(c.value for c in carried)

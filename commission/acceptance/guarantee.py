@@ -39,6 +39,7 @@ class Terms:
     carried_by: CarriedBy = "design model"
     route: str | None = None
     source: str | None = None
+    includes: tuple[str, ...] | None = None
 
     def limits(self, value: float) -> tuple[float | None, float | None]:
         """Lower and upper limit of the measured value where `value` is the guaranteed one of the day.
@@ -82,7 +83,23 @@ def terms_of(guarantee: Guarantee) -> Terms:
         guarantee.carried_by,
         guarantee.route,
         guarantee.source,
+        guarantee.includes,
     )
+
+
+def boundary_differs(terms: Terms, boundary: tuple[str, ...] | None) -> str | None:
+    """Why a measured power or COP is not the one of this guarantee: another boundary is counted; None where it is.
+
+    `boundary` is what the design's power input counts, and with it the meter's; None where nobody says.
+    """
+    if terms.includes is None or terms.quantity not in ("power_input", "cooling_cop", "heating_cop"):
+        return None
+    if boundary is None:
+        return "the contract says what the power counts, and the design does not: state `includes` at the rated points"
+    if set(terms.includes) == set(boundary):
+        return None
+    counted, designed = (", ".join(sorted(x)) for x in (terms.includes, boundary))
+    return f"the contract counts the power of {counted}, the design that of {designed}: these are two boundaries"
 
 
 def stated_conditions(conditions: Conditions) -> dict[str, float]:
@@ -193,8 +210,15 @@ def supplier_grid(quantity: str, rated_points: Sequence[RatedPoint]) -> tuple[tu
 
 def _rated_value(quantity: str, point: RatedPoint) -> float | None:
     if quantity in ("cooling_cop", "heating_cop"):
+        stated: float | None = getattr(point, quantity)
         capacity = point.cooling_capacity if quantity == "cooling_cop" else point.heating_capacity
-        return None if capacity is None or point.power_input is None else capacity / point.power_input
+        if stated is not None or capacity is None or point.power_input is None:
+            return stated
+        return capacity / point.power_input
+    if quantity == "net_cooling_capacity":
+        return point.cooling_capacity if point.capacity_is == "net" else None
+    if quantity == "cooling_capacity" and point.capacity_is == "net":
+        return None
     value: float | None = getattr(point, quantity)
     return value
 

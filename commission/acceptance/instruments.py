@@ -32,6 +32,8 @@ _ROOT_12 = math.sqrt(12.0)
 _DAYS_A_YEAR = 365.25
 _ICE = 273.15
 BAROMETER = "barometric pressure"
+HEAT = ("cooling_capacity", "net_cooling_capacity", "heating_capacity")
+"""Quantities in watts that a heat meter shows; an electric meter never does."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -147,23 +149,24 @@ def instrument_budget(
     *,
     name: str = "instrument",
     barometric_standard: float | None = None,
-    drift_per_year: float | None = None,
 ) -> Budget:
     """Uncertainty of one reading of quantity `key` (a nomenclature key) with value `value` in SI.
 
     Largest permissible errors are rectangular (JCGM 100, 4.3.7), a resolution is rectangular over one step (F.2.2.1),
     the spread of samples is type A (4.2.3). A gauge counts from the air pressure `barometric` (Pa), whose own standard
     uncertainty in Pa is `barometric_standard` (from the library where None) and is shared by all gauges. A matched
-    pair shares its class error, so that it cancels in a difference. `drift_per_year` (SI) adds the largest drift since
-    calibration; nothing is assumed where it is not stated. `name` is the id of the instrument.
+    pair shares its class error, so that it cancels in a difference. A stated drift per year counts from the
+    calibration to the day `on`; nothing is assumed where it is not stated. `name` is the id of the instrument.
 
     Raises:
         NotCalculatedError: the statement of the instrument is incomplete, or it measures something else.
     """
     kind = NOMENCLATURE[key].kind
+    label = NOMENCLATURE[key].label.lower()
     if instrument.resolved.kind is not kind:
-        label = NOMENCLATURE[key].label.lower()
         raise NotCalculatedError(f"{name} measures {instrument.measures}, not the {kind.value} that {label} is")
+    if kind is Kind.POWER and (instrument.measures == "heat") is not (key in HEAT):
+        raise NotCalculatedError(f"{name} measures {instrument.measures}, which {label} is not")
     gauge = instrument.resolved.reference is Reference.GAUGE
     found = statement(instrument)
     shown = _as_shown(value, kind, barometric if gauge else 0.0)
@@ -173,8 +176,8 @@ def instrument_budget(
         parts.append(_resolution(instrument.resolved.resolution, key, name))
     if gauge:
         parts.append(barometer_component(barometric_standard))
-    if drift_per_year and instrument.calibrated_on and on:
-        parts.append(_drift(drift_per_year, instrument.calibrated_on, on, key, name))
+    if instrument.resolved.drift_per_year and instrument.calibrated_on and on:
+        parts.append(_drift(instrument.resolved.drift_per_year, instrument.calibrated_on, on, key, name))
     if samples is not None and len(samples) > 1:
         parts.append(replace(spread_of(samples, f"spread of samples, {key}", f"{key}: spread"), of=key))
     return Budget(tuple(parts), tuple(_warnings(instrument, name, value - (barometric if gauge else 0.0), on)))
@@ -189,7 +192,7 @@ def assumed_budget(
         NotCalculatedError: nothing usual is known for this kind of quantity.
     """
     kind = NOMENCLATURE[key].kind
-    word = _WORD_OF_KIND.get(kind)
+    word = None if key in HEAT else _WORD_OF_KIND.get(kind)
     entry = library()["not_stated"].get(word)
     label = NOMENCLATURE[key].label.lower()
     if entry is None:

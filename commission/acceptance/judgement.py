@@ -10,11 +10,12 @@ from typing import TYPE_CHECKING, Any, Literal
 
 from commission.acceptance.budget import Budget, Measured, combine
 from commission.acceptance.changes import with_advice
+from commission.acceptance.closure import Closure
 from commission.acceptance.decision import Decision, Outcome, decide
 from commission.acceptance.derived import Derived
 from commission.acceptance.evaluation import Evaluation, evaluate
 from commission.acceptance.expectation import Deviation, Expectation
-from commission.acceptance.guarantee import Carried, Terms, carry, terms_of
+from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
 from commission.acceptance.impossible import Impossible
 from commission.acceptance.instruments import Reading
 from commission.acceptance.routes import Refusal, RouteResult
@@ -56,7 +57,7 @@ class GuaranteeVerdict:
     def what_would_decide(self) -> str | None:
         """What would turn undecided into a decision."""
         if self.withheld is not None:
-            return f"a repeated test without this fault: {self.withheld}"
+            return f"a repeated test in which this is put right: {self.withheld}"
         return self.decision.what_would_decide if self.decision else None
 
 
@@ -73,6 +74,7 @@ class Judgement:
     deviations: tuple[Deviation, ...]
     routes: tuple[RouteResult, ...]
     refusals: tuple[Refusal, ...]
+    closures: tuple[Closure, ...]
     guarantees: tuple[GuaranteeVerdict, ...]
     steadiness: tuple[Steadiness, ...]
     impossible: tuple[Impossible, ...]
@@ -140,8 +142,8 @@ def judge(
         warnings.append("no frozen test sheet: the guarantees are judged by the description as it stands today")
     return Judgement(
         model.system_id, mode, found.conditions, found.measured, found.derived, found.expectations, found.deviations,
-        found.routes, found.refusals, tuple(verdicts), still, found.impossible, found.not_judged, tuple(warnings),
-        sheet.digest if sheet is not None else None,
+        found.routes, found.refusals, found.closures, tuple(verdicts), still, found.impossible, found.not_judged,
+        tuple(warnings), sheet.digest if sheet is not None else None,
     )  # fmt: skip
 
 
@@ -155,6 +157,8 @@ def withheld_by(contradictions: Iterable[Impossible], still: Iterable[Steadiness
 def _verdicts(
     loaded: LoadedPlant, model: SystemModel, found: Evaluation, sheet: TestSheet | None, withheld: str | None
 ) -> list[GuaranteeVerdict]:
+    from commission.prediction.building import boundary
+
     if sheet is not None:
         return [
             verdict(t.terms, found, partial(sheet.carried, t, found.conditions), withheld, frozen=True)
@@ -162,10 +166,14 @@ def _verdicts(
             if t.terms is not None
         ]
     system = loaded.system(model.system_id)
+    counted = boundary(model.facts)
     return [
-        verdict(terms, found, partial(carry, terms, found.conditions, model, system.rated_points), withheld)
+        verdict(
+            terms, found, partial(carry, terms, found.conditions, model, system.rated_points),
+            withheld or boundary_differs(terms, counted),
+        )
         for terms in map(terms_of, system.guarantee)
-    ]
+    ]  # fmt: skip
 
 
 def verdict(

@@ -40,6 +40,17 @@ def data_of(judgement: Judgement) -> dict[str, Any]:
             {"route": r.route, "quantity": r.measured.key, **_measured(r.measured)} for r in judgement.routes
         ],
         "refused": [{"route": r.route, "quantity": r.key, "because": r.reason} for r in judgement.refusals],
+        "closures": [
+            {
+                "of": c.quantity,
+                "routes": [c.first, c.second],
+                "difference": c.difference,
+                "unit": "W",
+                "uncertainty": c.budget.standard,
+                "significant": c.significant,
+            }
+            for c in judgement.closures
+        ],
         "guarantees": [guarantee_data(g) for g in judgement.guarantees],
         "steadiness": [_steady(s) for s in judgement.steadiness],
         "cannot_be": [_impossible(i) for i in judgement.impossible],

@@ -235,6 +235,11 @@ def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) ->
     return RouteResult("liquid side", explained(propagate(key, heat, inputs), "liquid_side_capacity", inputs, **more))
 
 
+def heat_meter(measured: Measured) -> RouteResult:
+    """A capacity as a heat meter in the liquid shows it; its stated accuracy holds flow, pair and calculator."""
+    return RouteResult("liquid side", explained(measured, "heat_meter_reading", {}))
+
+
 def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[str, Measured]) -> RouteResult:
     """Heat taken from or given to air that neither loses nor gains water, from its flow and temperatures.
 

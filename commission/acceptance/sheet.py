@@ -54,7 +54,9 @@ class Target:
 class TestSheet:
     """A frozen sheet. `conditions` are those held at one value over the sheet; `versions` name tool and data.
 
-    `instruments` holds each instrument in the words of the description; `assumptions` the values in use, in SI.
+    `instruments` holds each instrument in the words of the description; `assumptions` the values in use, in SI;
+    `route_inputs` value and standard uncertainty of what a route takes from the model (SI), so that a later change of
+    the model does not move a measured capacity either.
     """
 
     __test__ = False  # not a class of tests, whatever its name
@@ -71,6 +73,7 @@ class TestSheet:
     instruments: Mapping[str, Mapping[str, str]]
     assumptions: Mapping[str, float]
     steadiness: str
+    route_inputs: Mapping[str, tuple[float, float]] = field(default_factory=dict)
 
     def to_text(self) -> str:
         """The sheet as YAML with sorted keys; the first line is the digest of the rest. Same sheet, same bytes."""

@@ -62,6 +62,7 @@ def body_of(sheet: TestSheet) -> str:
         "instruments": {k: dict(v) for k, v in sheet.instruments.items()},
         "assumptions": {k: _size(v) for k, v in sheet.assumptions.items()},
         "steadiness": sheet.steadiness,
+        "route_inputs": {k: [_size(v), _size(u)] for k, (v, u) in sheet.route_inputs.items()},
     }
     text: str = yaml.safe_dump(data, sort_keys=True, allow_unicode=True, width=110, default_flow_style=None)
     return text
@@ -95,7 +96,7 @@ def _terms_out(terms: Terms) -> dict[str, Any]:
         "carried_by": terms.carried_by,
     }
     optional = {"tolerance_below": terms.below, "tolerance_above": terms.above, "route": terms.route,
-                "source": terms.source}  # fmt: skip
+                "source": terms.source, "includes": list(terms.includes) if terms.includes else None}  # fmt: skip
     data.update({k: _size(v) if isinstance(v, float) else v for k, v in optional.items() if v is not None})
     return data
 
@@ -167,6 +168,7 @@ def _build(data: Mapping[str, Any]) -> TestSheet:
         instruments={str(k): {str(a): str(b) for a, b in v.items()} for k, v in data["instruments"].items()},
         assumptions={str(k): float(v) for k, v in data["assumptions"].items()},
         steadiness=str(data["steadiness"]),
+        route_inputs={str(k): (float(v), float(u)) for k, (v, u) in data["route_inputs"].items()},
     )
 
 
@@ -206,6 +208,7 @@ def _terms(quantity: str, data: Mapping[str, Any]) -> Terms:
         _one_of(CarriedBy, data["carried_by"]),
         _maybe(str, data.get("route")),
         _maybe(str, data.get("source")),
+        _maybe(lambda words: tuple(str(w) for w in words), data.get("includes")),
     )
 
 

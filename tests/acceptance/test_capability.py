@@ -75,7 +75,7 @@ def test_matched_pair_is_what_makes_it_provable(chiller: LoadedPlant, tmp_path: 
 
 
 def test_inlets_without_an_instrument_are_assumed(cold_room: LoadedPlant, tmp_path: Path) -> None:
-    """A plant without instruments still gets a page: inlets are assumed with a warning, the rest is listed as unread."""
+    """A plant without instruments still gets a page: inlets are assumed with a warning, the rest is listed."""
     start = COLD_ROOM.index("instruments:")
     bare = COLD_ROOM[:start] + COLD_ROOM[COLD_ROOM.index("systems:") :]
     bare = bare.replace("    measured_with: {power_input: power meter}\n", "")

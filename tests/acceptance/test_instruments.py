@@ -103,10 +103,12 @@ def test_spread_of_samples_counts() -> None:
 
 def test_drift_only_where_stated() -> None:
     """Drift counts from calibration to the day, and nothing is assumed where it is not stated."""
-    meter = instrument(measures="electric power", accuracy={"of_reading": "1 %"}, calibrated_on="2026-01-01")
+    keys = {"measures": "electric power", "accuracy": {"of_reading": "1 %"}, "calibrated_on": "2026-01-01"}
     day = dt.date(2027, 1, 1)
-    assert len(instrument_budget(meter, "power_input", 1500.0, AIR, on=day).components) == 1
-    found = instrument_budget(meter, "power_input", 1500.0, AIR, on=day, drift_per_year=6.0, name="m")
+    assert len(instrument_budget(instrument(**keys), "power_input", 1500.0, AIR, on=day).components) == 1
+    drifting = instrument(**keys, drift_per_year="6 W")
+    assert len(instrument_budget(drifting, "power_input", 1500.0, AIR).components) == 1
+    found = instrument_budget(drifting, "power_input", 1500.0, AIR, on=day, name="m")
     assert parts(found)["drift of m"] == pytest.approx(6.0 * 365 / 365.25 / math.sqrt(3.0))
 
 
@@ -171,6 +173,17 @@ def test_wrong_kind_of_instrument_is_refused() -> None:
     probe = instrument(measures="temperature", **{"class": "IEC 60751 A"})
     with pytest.raises(NotCalculatedError, match="pipe probe measures temperature, not the pressure"):
         instrument_budget(probe, "suction_pressure", 4e5, AIR, name="pipe probe")
+
+
+def test_heat_meters_and_electric_meters_are_not_mixed() -> None:
+    """Both show watts, but a heat meter shows no power input and an electric meter no capacity."""
+    heat = instrument(measures="heat", accuracy={"of_reading": "4 %"})
+    electric = instrument(measures="electric power", accuracy={"of_reading": "1 %"})
+    assert instrument_budget(heat, "cooling_capacity", 38e3, AIR).standard == pytest.approx(0.04 * 38e3 / 3**0.5)
+    with pytest.raises(NotCalculatedError, match="measures heat, which power input is not"):
+        instrument_budget(heat, "power_input", 9e3, AIR)
+    with pytest.raises(NotCalculatedError, match="measures electric power, which cooling capacity is not"):
+        instrument_budget(electric, "cooling_capacity", 38e3, AIR)
 
 
 def test_instrument_not_stated_is_assumed_and_said() -> None:

@@ -4,12 +4,15 @@ from __future__ import annotations
 
 import datetime as dt
 import json
+from pathlib import Path
 
 import pytest
 
-from commission.acceptance import Judgement, Reading, judge
+from commission.acceptance import Judgement, Reading, judge, make_sheet
 from commission.description import LoadedPlant
-from commission.prediction import SystemModel
+from commission.errors import NotCalculatedError
+from commission.prediction import SystemModel, fit
+from tests.acceptance.conftest import CHILLER, COLD_ROOM, write_plant
 from tests.acceptance.visits import visit
 
 SINK, SOURCE = "heat_sink_inlet_temperature", "heat_source_inlet_temperature"
@@ -44,11 +47,17 @@ def test_a_good_chiller_conforms(chiller: LoadedPlant, chiller_model: SystemMode
 
 
 def test_a_poor_chiller_does_not(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
-    """One kelvin less of water range is 20 % less capacity: not conforming, and that is the outcome of the visit."""
-    outlet = chiller_model.predict().expected["heat_source_outlet_temperature"].value
-    found = chiller_test(chiller, chiller_model, heat_source_outlet_temperature=outlet + 1.0)
-    assert found.guarantees[0].outcome == "not conforming"
-    assert found.outcome == "not conforming"
+    """One kelvin less of water range on both sides is 20 % less capacity: not conforming, the outcome of the visit.
+    On the source side alone the first law would not close, and there is no verdict."""
+    expected = chiller_model.predict().expected
+    cold = expected["heat_source_outlet_temperature"].value + 1.0
+    hot = expected["heat_sink_outlet_temperature"].value - 0.85
+    poor = chiller_test(chiller, chiller_model, heat_source_outlet_temperature=cold, heat_sink_outlet_temperature=hot)
+    assert poor.guarantees[0].outcome == "not conforming"
+    assert poor.outcome == "not conforming"
+    odd = chiller_test(chiller, chiller_model, heat_source_outlet_temperature=cold)
+    assert "first law" in {i.rule for i in odd.impossible}
+    assert odd.outcome == "undecided"
 
 
 def test_impossible_readings_withhold_the_verdict(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
@@ -164,3 +173,64 @@ def test_data_of_a_judgement_is_plain(chiller: LoadedPlant, chiller_model: Syste
     assert first["measured"]["uncertainty"] > 0.0
     assert {r["route"] for r in data["routes"]} == {"liquid side", "compressor heat balance"}
     assert {r["route"] for r in data["refused"]} == {"air side"}
+
+
+def test_two_routes_are_held_against_each_other(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
+    """Liquid side and compressor heat balance give one capacity, and both sides close by the first law; a wrong flow
+    is seen by it."""
+    good = chiller_test(chiller, chiller_model).closures
+    assert {(c.quantity, c.first, c.second) for c in good} >= {
+        ("cooling_capacity", "compressor heat balance", "liquid side"),
+        ("first law", "liquid side", "compressor heat balance"),
+    }
+    assert not [c for c in good if c.significant]
+    flow = 1.4 * chiller_model.rated_condition["heat_source_flow"]
+    bad = judge(chiller, chiller_model, *visit(chiller, chiller_model, heat_source_flow=flow), "trim").closures
+    assert [c for c in bad if c.quantity == "cooling_capacity" and c.significant]
+
+
+def test_heat_meter_is_the_liquid_side(chiller: LoadedPlant, chiller_model: SystemModel, tmp_path: Path) -> None:
+    """A capacity that a heat meter shows counts as the liquid side, with its own stated accuracy."""
+    meter = "heat meter: {measures: heat, accuracy: {of_reading: 3 %}, calibrated_until: 2028-01-31}"
+    text = CHILLER.replace("instruments:\n", f"instruments:\n  {meter}\n")
+    plant = write_plant(tmp_path / "metered", text)
+    asked, read = visit(chiller, chiller_model)
+    read.append(Reading("cooling_capacity", 37.5e3, "heat meter"))
+    found = judge(plant, chiller_model, asked, read, "test", since_start=3600.0)
+    verdict = found.guarantees[0]
+    assert verdict.route == "liquid side"
+    assert verdict.measured is not None
+    assert verdict.measured.value == 37.5e3
+    assert verdict.measured.budget.standard == pytest.approx(0.03 * 37.5e3 / 3**0.5)
+
+
+def test_net_capacity_deducts_the_fan(cold_room: LoadedPlant, cold_room_model: SystemModel, tmp_path: Path) -> None:
+    """A net cooling capacity is the measured one less the evaporator fan, 110 W here."""
+    plant = write_plant(
+        tmp_path / "net", COLD_ROOM.replace("quantity: cooling_capacity", "quantity: net_cooling_capacity")
+    )
+    readings = visit(cold_room, cold_room_model)
+    gross, net = (
+        judge(p, cold_room_model, *readings, "test", since_start=3600.0).guarantees[0] for p in (cold_room, plant)
+    )
+    assert gross.measured is not None
+    assert net.measured is not None
+    assert gross.measured.value - net.measured.value == pytest.approx(110.0, abs=0.5)
+
+
+def test_another_boundary_is_no_verdict(cold_room_model: SystemModel, tmp_path: Path) -> None:
+    """A contract that counts only the compressor cannot be judged by a meter that counts the fan too."""
+    text = COLD_ROOM.replace("decision: guarded}", "decision: guarded, includes: [compressor]}")
+    plant = write_plant(tmp_path / "boundary", text)
+    model = fit(plant, "cold-room")
+    found = judge(plant, model, *visit(plant, model), "test", since_start=3600.0)
+    assert found.guarantees[1].outcome == "undecided"
+    assert found.guarantees[1].withheld == (
+        "the contract counts the power of compressor, the design that of compressor, condenser fan: "
+        "these are two boundaries"
+    )
+    with pytest.raises(NotCalculatedError, match="two boundaries"):
+        make_sheet(plant, model, {SINK: (300.0, 305.0)})
+    same = write_plant(tmp_path / "same", text.replace("[compressor]}", "[condenser fan, compressor]}"))
+    agreed = judge(same, cold_room_model, *visit(same, cold_room_model), "test", since_start=3600.0)
+    assert agreed.guarantees[1].outcome == "conforming"

@@ -103,7 +103,7 @@ def test_4_4_3_twenty_temperatures() -> None:
 
 
 def test_table_g2_student_factors() -> None:
-    """Table G.2: t for 95 % at 5, 10, 20 degrees of freedom 2.57, 2.23, 2.09; for 95.45 % at 50, infinite 2.05, 2.00."""
+    """Table G.2: t for 95 % at 5, 10, 20 degrees of freedom 2.57, 2.23, 2.09; 95.45 % at 50, infinite 2.05, 2.00."""
     for dof, printed in ((5, 2.57), (10, 2.23), (20, 2.09)):
         assert Budget((Component("x", 1.0, dof=dof),)).coverage(0.95) == pytest.approx(printed, abs=0.005)
     assert Budget((Component("x", 1.0, dof=50),)).coverage(0.9545) == pytest.approx(2.05, abs=0.005)

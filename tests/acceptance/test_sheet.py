@@ -161,7 +161,8 @@ def test_later_changes_never_move_a_frozen_verdict(
     changed = (
         COLD_ROOM.replace("value: 3.3 kW", "value: 4.4 kW")
         .replace("cooling_capacity: 3.45 kW", "cooling_capacity: 3.60 kW")
-        .replace("    duty:", "    assumptions: {suction_line_loss: {value: 2 K, source: measured}}\n    duty:")
+        .replace("    duty:", "    assumptions: {suction_line_superheat: {value: 9 K, source: measured}, " +
+            "shell_heat_loss_share: {value: 12 %, source: measured}}\n    duty:")
     )  # fmt: skip
     other = write_plant(tmp_path / "changed", changed)
     other_model = fit(other, "cold-room")
@@ -173,5 +174,11 @@ def test_later_changes_never_move_a_frozen_verdict(
         assert old.frozen
         assert (old.outcome, old.decision.limit_low) == (new.outcome, new.decision.limit_low)
         assert old.guaranteed == new.guaranteed
+        assert old.measured is not None
+        assert new.measured is not None
+        assert new.measured.value == pytest.approx(old.measured.value, rel=1e-4)
     assert today.guarantees[0].outcome == "not conforming"
+    assert today.guarantees[0].measured is not None
+    assert before.guarantees[0].measured is not None
+    assert today.guarantees[0].measured.value < 0.97 * before.guarantees[0].measured.value
     assert {k: e.value for k, e in before.expectations.items()} == {k: e.value for k, e in after.expectations.items()}
