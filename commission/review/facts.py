@@ -147,7 +147,9 @@ def conditions_of(part: Conditions) -> dict[str, float]:
     return {key: value for key in CONDITION_KEYS if (value := getattr(part, key)) is not None}
 
 
-def gather(loaded: LoadedPlant, visit: dt.date | None) -> tuple[PlantFacts, tuple[SystemFacts, ...]]:
+def gather(
+    loaded: LoadedPlant, visit: dt.date | None, models: Mapping[str, SystemModel]
+) -> tuple[PlantFacts, tuple[SystemFacts, ...]]:
     """The facts of the plant and of each system in the order of the file; what fails for one stops no other.
 
     Raises:
@@ -155,10 +157,12 @@ def gather(loaded: LoadedPlant, visit: dt.date | None) -> tuple[PlantFacts, tupl
     """
     display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
     plant = PlantFacts(loaded, display, visit, thresholds_of(loaded.folder))
-    return plant, tuple(_system_facts(plant, key, system) for key, system in loaded.plant.systems.items())
+    return plant, tuple(
+        _system_facts(plant, key, system, models.get(key)) for key, system in loaded.plant.systems.items()
+    )
 
 
-def _system_facts(plant: PlantFacts, key: str, system: System) -> SystemFacts:
+def _system_facts(plant: PlantFacts, key: str, system: System, fitted: SystemModel | None) -> SystemFacts:
     from commission.prediction import fit
     from commission.properties import refrigerant
 
@@ -168,7 +172,7 @@ def _system_facts(plant: PlantFacts, key: str, system: System) -> SystemFacts:
     except CommissionError as error:
         return replace(facts, reason=reason_of(error))
     try:
-        model = fit(plant.loaded, key)
+        model = fitted if fitted is not None else fit(plant.loaded, key)
         facts = replace(facts, model=model, outlooks=_outlooks(facts, model))
     except CommissionError as error:
         facts = replace(facts, reason=reason_of(error))

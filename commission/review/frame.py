@@ -3,13 +3,17 @@
 from __future__ import annotations
 
 import datetime as dt
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant, Position
 from commission.errors import CommissionError
 from commission.review.facts import PlantFacts, SystemFacts, gather, reason_of
 from commission.review.finding import SEVERITIES, Finding, Remark
+
+if TYPE_CHECKING:
+    from commission.prediction import SystemModel
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,18 +31,21 @@ class Rule:
     of_plant: Callable[[PlantFacts], Iterable[Remark]] | None = None
 
 
-def review(loaded: LoadedPlant, *, visit: dt.date | None = None) -> tuple[Finding, ...]:
+def review(
+    loaded: LoadedPlant, *, visit: dt.date | None = None, models: Mapping[str, SystemModel] | None = None
+) -> tuple[Finding, ...]:
     """Everything that a good colleague would say about this plant, errors first, then in the order of plant and rules.
 
     `visit` is the day for which calibrations and dates are judged; without it they are judged only against the dates
-    of the records. There is no clock: the same input gives the same findings.
+    of the records. There is no clock: the same input gives the same findings. `models` are systems already fitted, by
+    id, which saves fitting them again.
 
     Raises:
         ReviewFileError: the plant's own `review.yaml` cannot be used.
     """
     from commission.review.table import RULES
 
-    plant, systems = gather(loaded, visit)
+    plant, systems = gather(loaded, visit, models or {})
     found = [finding for rule in RULES if rule.of_plant for finding in _run_on_plant(rule, plant)]
     for facts in systems:
         found += [finding for rule in RULES if rule.of_system for finding in _run_on_system(rule, facts)]

@@ -124,6 +124,14 @@ def test_the_same_plant_gives_the_same_findings(make_plant: Plants) -> None:
     assert [str(f) for f in review(loaded)] == [str(f) for f in review(loaded)]
 
 
+def test_a_fitted_model_may_be_handed_in(make_plant: Plants) -> None:
+    """The manual has fitted the systems already; the findings are the same."""
+    from commission.prediction import fit
+
+    loaded = make_plant({"charge": None})
+    assert review(loaded, models={"one": fit(loaded, "one")}) == review(loaded)
+
+
 def test_a_system_that_cannot_be_calculated_stops_no_other(make_plant: Plants) -> None:
     """The second system states nothing to fit; it says so, and the first is reviewed as before."""
     alone = make_plant({"charge": None})
