@@ -11,7 +11,7 @@ from pydantic import TypeAdapter, ValidationError
 
 from commission.description.fields import FileName
 from commission.description.positions import DescriptionError, KeyPath, Mark, Positions
-from commission.description.reading import read_yaml
+from commission.description.reading import MAX_PARTS, read_yaml
 from commission.description.tables import Table, read_table
 from commission.description.taking_over import at, take_over
 from commission.errors import Problem
@@ -104,11 +104,19 @@ def _include(whole: Assembled) -> list[Problem]:
         whole.problems += read.problems
         if isinstance(read.data, dict):
             _merge(whole, read.data, read.positions)
+            _bound(whole, ("include", number))
         else:
             whole.problems.append(read.positions.problem((), "keys with values are wanted here"))
     if isinstance(names, list) and len(names) > MAX_FILES:
         whole.problems.append(whole.positions.problem(("include", MAX_FILES), f"more than {MAX_FILES} files"))
     return unread
+
+
+def _bound(whole: Assembled, path: KeyPath) -> None:
+    """All files together may hold no more than one file may."""
+    if len(whole.positions.marks) > MAX_PARTS:
+        message = f"the plant holds more than {MAX_PARTS} keys and values with this file"
+        raise DescriptionError(*whole.problems, whole.positions.problem(path, message))
 
 
 def _named(problem: Problem, whole: Assembled, path: KeyPath) -> Problem:
@@ -176,6 +184,7 @@ def _read_tables(whole: Assembled, systems: dict[str, Any]) -> list[Problem]:
                 continue
             whole.contents[name] = table.content
             holder[inside[-1]] = _points(whole, table, path)
+            _bound(whole, path)
     return unread
 
 

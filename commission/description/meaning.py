@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from itertools import islice
 
+from commission.description.checking import MAX_PROBLEMS
 from commission.description.instruments import MEASURED, read_end
 from commission.description.looked import Looked
 from commission.description.meaning_of_systems import CHECKS_OF_A_SYSTEM
@@ -14,14 +16,16 @@ from commission.quantities import Pressure, Reference, parse
 
 
 def problems_of_meaning(looked: Looked) -> list[Problem]:
-    """All problems that the second pass can see."""
-    found: list[Problem] = []
+    """All problems that the second pass can see, or more than a person can read."""
+    return list(islice(_all(looked), MAX_PROBLEMS + 1))
+
+
+def _all(looked: Looked) -> Iterator[Problem]:
     for check in (_site, _instruments, _pressures, _refrigerant_figures):
-        found += check(looked)
+        yield from check(looked)
     for identity, system in looked.plant.systems.items():
         for of_system in CHECKS_OF_A_SYSTEM:
-            found += of_system(looked, ("systems", identity), system)
-    return found
+            yield from of_system(looked, ("systems", identity), system)
 
 
 def _site(looked: Looked) -> Iterator[Problem]:

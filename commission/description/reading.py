@@ -20,6 +20,8 @@ MAX_BYTES = 512 * 1024
 """Largest file that is read; a description of fifty systems has about 200 kB."""
 MAX_DEPTH = 20
 """Deepest nesting of lists and mappings."""
+MAX_PARTS = 50_000
+"""Most keys and values of a file, or of all files of a plant together; fifty systems have about ten thousand."""
 
 Loader: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
@@ -146,6 +148,7 @@ class _Builder:
     positions: Positions = field(default_factory=Positions)
     problems: list[Problem] = field(default_factory=list)
     stack: list[_Open] = field(default_factory=list)
+    parts: int = 0
 
     def read(self, events: Iterator[Any]) -> None:
         documents = 0
@@ -155,6 +158,9 @@ class _Builder:
                 if documents > 1:
                     self.refuse(event, "one file holds one document; a second one starts here")
             elif isinstance(event, yaml.NodeEvent):
+                self.parts += 1
+                if self.parts > 2 * MAX_PARTS:
+                    self.refuse(event, f"the file holds more than {MAX_PARTS} keys and values")
                 self.check_node(event)
                 self.node(event)
             elif isinstance(event, yaml.CollectionEndEvent):

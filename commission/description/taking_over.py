@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from itertools import islice
 from typing import Any
 
-from commission.description.positions import KeyPath, Mark, Positions
+from commission.description.checking import MAX_PROBLEMS
+from commission.description.positions import DescriptionError, KeyPath, Mark, Positions
 from commission.errors import Problem, nearest, shorten
 
-MAX_TAKEN_OVER = 100_000
+MAX_TAKEN_OVER = 30_000
 """Most keys that all `like` of a plant take over together, so that a short file cannot become a huge plant."""
 
 NOT_TAKEN_OVER: tuple[KeyPath, ...] = (
@@ -21,14 +23,19 @@ NOT_TAKEN_OVER: tuple[KeyPath, ...] = (
 def take_over(systems: dict[str, Any], positions: Positions) -> list[Problem]:
     """Complete each system that says `like` from the one it names, in `systems` and `positions`.
 
-    A system may follow one that follows another. Returns the problems found: an unknown id, a circle, a key of
-    `without` that is not there, or more than `MAX_TAKEN_OVER` keys in all.
+    A system may follow one that follows another. Returns the problems found: an unknown id, a circle, or a key of
+    `without` that is not there.
+
+    Raises:
+        DescriptionError: more than `MAX_TAKEN_OVER` keys are taken over in all.
     """
     run = _Run(systems, positions)
     for path, mark in positions.marks.items():
         if len(path) > 2 and path[0] == "systems":
             run.marks.setdefault(str(path[1]), []).append((path[2:], mark))
     for identity in list(systems):
+        if len(run.problems) > MAX_PROBLEMS:
+            break
         for one in run.chain(identity):
             run.complete(one, systems[one]["like"])
             run.done.add(one)
@@ -55,7 +62,7 @@ class _Run:
 
     def chain(self, identity: str) -> list[str]:
         """The systems to complete so that `identity` is complete, in order; each fault is noted once."""
-        chain: list[str] = []
+        chain: dict[str, None] = {}  # a list that is quick to search
         while identity not in self.done:
             system = self.systems[identity]
             base = system.get("like") if isinstance(system, dict) else None
@@ -63,7 +70,7 @@ class _Run:
                 break
             path: KeyPath = ("systems", identity, "like")
             if not isinstance(self.systems.get(base), dict):
-                known = [one for one in self.systems if one != identity][:50]
+                known = [one for one in islice(self.systems, 50) if one != identity]
                 allowed = shorten(", ".join(known)) or "no other system is described"
                 near = nearest(base, known)
                 self.problems.append(
@@ -71,19 +78,17 @@ class _Run:
                 )
                 self.done.add(identity)
                 break
-            chain.append(identity)
+            chain[identity] = None
             if base in chain:
                 message = "these systems take over from each other in a circle"
                 self.problems.append(self.positions.problem(path, message))
                 self.done.update(chain)
                 return []
             identity = base
-        return chain[::-1]
+        return list(reversed(chain))
 
     def complete(self, identity: str, base: str) -> None:
         """Take over from `base` what `identity` does not say itself."""
-        if self.taken > MAX_TAKEN_OVER:
-            return
         taken: set[KeyPath] = set()
         left_out = set(NOT_TAKEN_OVER) | self.without(identity, base)
         self.systems[identity] = _filled(self.systems[identity], self.systems[base], (), left_out, taken)
@@ -96,7 +101,8 @@ class _Run:
                 self.taken += 1
         if self.taken > MAX_TAKEN_OVER:
             message = "the systems take over too much from each other"
-            self.problems.append(self.positions.problem(("systems", identity, "like"), message))
+            too_much = self.positions.problem(("systems", identity, "like"), message)
+            raise DescriptionError(*self.problems, too_much)
 
     def without(self, identity: str, base: str) -> set[KeyPath]:
         """The key paths that `without` leaves out; each must stand in the base."""

@@ -129,7 +129,7 @@ def test_the_largest_files_take_no_longer_than_a_breath() -> None:
     started = time.process_time()
     for text in shapes:
         assert all(p.line for p in problems_of(text))
-    assert time.process_time() - started < 20 * len(shapes) / 6
+    assert time.process_time() - started < 2.0 * len(shapes)
 
 
 def test_random_bytes_are_read_or_refused(tmp_path: Path) -> None:
