@@ -19,7 +19,7 @@ from commission.records.items import OpenItem, items_csv, open_items
 from commission.records.judge import judge_record
 from commission.records.model import RecordFile
 from commission.records.read import RecordError, read_record, records_folder
-from commission.records.recompute import Recomputation, recompute
+from commission.records.recomputation import Recomputation, recompute
 from commission.records.record import CheckedAnswer, Record, SiteReading
 from commission.records.sums import FileFinding, SumsError
 

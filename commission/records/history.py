@@ -106,7 +106,7 @@ def recomputed_series(
     """
     from commission.prediction import fit
     from commission.records.freeze import frozen_deviations
-    from commission.records.recompute import recompute
+    from commission.records.recomputation import recompute
 
     kept = [r for r in in_force(records) if r.system == system]
     chosen = baseline_of(kept)

@@ -55,9 +55,8 @@ def main() -> None:
     print("ready", flush=True)
     for line in sys.stdin:
         asked = json.loads(line)
-        children = [
-            file_in_child(loaded, draft, asked.get("attach"), asked.get("kill_at")) for draft in asked["drafts"]
-        ]
+        plant = load_plant(asked["plant"])
+        children = [file_in_child(plant, draft, asked.get("attach"), asked.get("kill_at")) for draft in asked["drafts"]]
         if "delay" in asked:
             time.sleep(asked["delay"])
             for child in children:

@@ -36,24 +36,33 @@ remarks: visit %s
 Ask = Callable[..., list[int]]
 
 
-@pytest.fixture
-def ask(folder: Path) -> Iterator[Ask]:
-    """Send a request to a filing process of the test plant and return the exit codes of its children."""
-    command = [sys.executable, str(Path(__file__).with_name("filing_process.py")), str(folder)]
-    pipes: dict[str, Any] = {"stdin": subprocess.PIPE, "stdout": subprocess.PIPE, "text": True}
-    with subprocess.Popen(command, cwd=Path(__file__).parents[2], **pipes) as process:
+@pytest.fixture(scope="module")
+def filing_process(plant_template: Path) -> Iterator[subprocess.Popen[str]]:
+    """A filing process that has read the checklist library and is ready."""
+    command = [sys.executable, str(Path(__file__).with_name("filing_process.py")), str(plant_template)]
+    root = Path(__file__).parents[2]
+    with subprocess.Popen(command, cwd=root, stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True) as process:
         assert process.stdin is not None
         assert process.stdout is not None
         assert process.stdout.readline() == "ready\n"
-
-        def request(*drafts: Path, **more: Any) -> list[int]:
-            process.stdin.write(json.dumps({"drafts": [str(d) for d in drafts], **more}) + "\n")
-            process.stdin.flush()
-            codes: list[int] = json.loads(process.stdout.readline())
-            return codes
-
-        yield request
+        yield process
         process.stdin.close()
+
+
+@pytest.fixture
+def ask(folder: Path, filing_process: subprocess.Popen[str]) -> Ask:
+    """Send a request about the test plant to the filing process and return the exit codes of its children."""
+
+    def request(*drafts: Path, **more: Any) -> list[int]:
+        assert filing_process.stdin is not None
+        assert filing_process.stdout is not None
+        asked = {"plant": str(folder), "drafts": [str(d) for d in drafts], **more}
+        filing_process.stdin.write(json.dumps(asked) + "\n")
+        filing_process.stdin.flush()
+        codes: list[int] = json.loads(filing_process.stdout.readline())
+        return codes
+
+    return request
 
 
 @pytest.fixture
@@ -94,7 +103,9 @@ def killed_and_filed_again(loaded: LoadedPlant, ask: Ask, draft: Path, evidence:
     nothing_is_halved(folder, evidence, before)
     new = set(filed(folder)) - set(before)
     assert len(new) == 1
-    assert read_filed(folder / new.pop()).file.remarks == draft.read_text(encoding="utf-8").split("remarks: ")[1].strip()
+    assert (
+        read_filed(folder / new.pop()).file.remarks == draft.read_text(encoding="utf-8").split("remarks: ")[1].strip()
+    )
     assert not [f for f in check_files(loaded) if f.state != "not listed"]
     assert not list(folder.rglob(f".*{PART}"))
     return codes
@@ -120,9 +131,7 @@ def test_killed_at_each_step_on_the_disk(
 
 
 @pytest.mark.long
-def test_killed_two_hundred_times_at_any_moment(
-    loaded: LoadedPlant, ask: Ask, write: Write, evidence: Path
-) -> None:
+def test_killed_two_hundred_times_at_any_moment(loaded: LoadedPlant, ask: Ask, write: Write, evidence: Path) -> None:
     """Two hundred kills spread over the time that a filing takes: no loss, no half file, each record once."""
     chance = random.Random(20260421)
     killed = tries = 0
