@@ -19,7 +19,8 @@ class Change:
 
     `causes` are the causes (or names) of the components to make smaller, together `factor` times what they are;
     `names` says the same in words for a person; `samples` is the number of samples to take instead, for a spread;
-    `remedies` say how.
+    `remedies` say how. `of` is the quantity that each arises in (a nomenclature key or words), `before` and `after` its
+    standard uncertainty there, in the SI unit of that quantity.
     """
 
     causes: tuple[str, ...]
@@ -27,6 +28,9 @@ class Change:
     factor: float
     samples: int | None = None
     remedies: tuple[str, ...] = ()
+    of: tuple[str, ...] = ()
+    before: tuple[float, ...] = ()
+    after: tuple[float, ...] = ()
 
     @property
     def text(self) -> str:
@@ -128,7 +132,11 @@ def _change(groups: list[tuple[Component, ...]], factor: float, samples: int | N
     causes = tuple(group[0].cause or group[0].name for group in groups)
     leading = [max((c for c in group if c.remedy), key=lambda c: abs(c.value)) for group in groups]
     remedies = tuple(dict.fromkeys(c.remedy for c in leading))
-    return Change(causes, tuple(_named(c) for c in leading), factor, samples, remedies)
+    before = tuple(abs(c.value / c.sensitivity) if c.sensitivity else abs(c.value) for c in leading)
+    return Change(
+        causes, tuple(_named(c) for c in leading), factor, samples, remedies,
+        tuple(c.of for c in leading), before, tuple(factor * b for b in before),
+    )  # fmt: skip
 
 
 def _named(component: Component) -> str:

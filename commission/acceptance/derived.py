@@ -6,7 +6,8 @@ kelvin. Shared causes stay shared: the same gauge in two derived readings moves 
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+import math
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -215,6 +216,32 @@ def _subcooling(
 
     more = {"loss": Input("line loss", loss.value, Kind.TEMPERATURE_DIFFERENCE, "calculated")}
     return explained(propagate("subcooling", subcooling, inputs), "subcooling_of_readings", inputs, **more)
+
+
+def unbalance(reading: Measured, phases: Sequence[float], step: float) -> Derived:
+    """Largest deviation of a phase from the mean of all, over that mean.
+
+    One meter reads all phases, so that its error scales them alike and leaves the ratio; its resolution `step` (SI)
+    does not: sqrt(1 + 1/n) of it, rectangular.
+
+    Raises:
+        ValueError: fewer than two phases, or a mean of zero.
+    """
+    n = len(phases)
+    mean = math.fsum(phases) / n if n else 0.0
+    if n < 2 or mean == 0.0:
+        raise ValueError("an unbalance needs at least two phases and a mean that is not zero")
+    key = f"{reading.key}_unbalance"
+    standard = step / math.sqrt(12.0) * math.sqrt(1.0 + 1.0 / n) / abs(mean)
+    component = Component(
+        "resolution of the meter", standard, "rectangular", source="JCGM 100:2008, F.2.2.1", mark="standard",
+        cause=f"{key}: resolution", of=key,
+    )  # fmt: skip
+    value = max(abs(x - mean) for x in phases) / abs(mean)
+    measured = Measured(key, value, Budget((component,) if standard else ()))
+    kind = NOMENCLATURE[reading.key].kind
+    inputs = tuple(Input(f"{reading.key}, phase {i}", x, kind, "reading") for i, x in enumerate(phases, 1))
+    return Derived(measured, Explained(key, value, measured.budget.standard, "unbalance_of_phases", inputs))
 
 
 def ratio(key: str, above: Measured, below: Measured) -> Derived:

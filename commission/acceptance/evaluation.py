@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Measured
 from commission.acceptance.closure import Closure, closures
-from commission.acceptance.derived import Derived, derive, less, ratio
+from commission.acceptance.derived import Derived, derive, less, ratio, unbalance
 from commission.acceptance.expectation import Deviation, Expectation, deviation, expect
 from commission.acceptance.impossible import Impossible, impossible
 from commission.acceptance.instruments import Reading, measure
@@ -127,6 +127,7 @@ def evaluate(
         warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
     inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet)
     derived = dict(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
+    derived.update(_unbalances(loaded, [*asked, *read], measured))
     have = {**measured, **{k: d.measured for k, d in derived.items()}}
     power = compressor_power(have, inputs.fans)
     routes, refusals = _routes(loaded, model, have, inputs, power, upsets)
@@ -241,6 +242,18 @@ def _routes(
             attempt("liquid side", key, partial(liquid_side, medium, side, have))
         attempt("air side", key, partial(air_side, medium, side, air, have))
     return results, refusals
+
+
+def _unbalances(
+    loaded: LoadedPlant, readings: Iterable[Reading], measured: Mapping[str, Measured]
+) -> Iterator[tuple[str, Derived]]:
+    """Unbalance of currents and voltages that were read in each phase."""
+    for reading in readings:
+        key = f"{reading.key}_unbalance"
+        if len(reading.phases) > 1 and key in NOMENCLATURE and reading.key in measured and any(reading.phases):
+            instrument = loaded.plant.instruments.get(reading.instrument or "")
+            step = (instrument.resolved.resolution if instrument else None) or 0.0
+            yield key, unbalance(measured[reading.key], reading.phases, step)
 
 
 def _capacities(routes: Iterable[RouteResult], have: Mapping[str, Measured]) -> Iterator[tuple[str, Derived]]:

@@ -8,6 +8,7 @@ from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
 from commission.acceptance.budget import Measured
+from commission.acceptance.capability import capability
 from commission.acceptance.choosing import choose_instrument
 from commission.acceptance.grid import Axis, interpolate, middles, points
 from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
@@ -167,8 +168,9 @@ def _guarantee_targets(
 
     system = loaded.system(model.system_id)
     held = {k: v for k, v in model.rated_condition.items() if k not in {a.key for a in axes}}
+    proof = capability(loaded, model, {**held, **centre}).guarantees
     targets = []
-    for guarantee in system.guarantee:
+    for guarantee, proved in zip(system.guarantee, proof, strict=True):
         terms = terms_of(guarantee)
         differs = boundary_differs(terms, boundary(model.facts))
         if differs is not None:
@@ -181,8 +183,9 @@ def _guarantee_targets(
         names = _route_instruments(loaded, model, terms, {**held, **centre})
         slopes = _held_slopes(at, terms, held, centre)
         method = carried[0].explained.method
+        reading = proved.verdict.measured.budget.standard if proved.verdict.measured else None
         targets.append(
-            Target(terms.quantity, "guarantee", method, values, uncertainties, missed, names, None, terms, slopes)
+            Target(terms.quantity, "guarantee", method, values, uncertainties, missed, names, reading, terms, slopes)
         )
     return targets
 

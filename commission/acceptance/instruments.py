@@ -40,7 +40,8 @@ HEAT = ("cooling_capacity", "net_cooling_capacity", "heating_capacity")
 class Reading:
     """What was read on site: quantity by nomenclature key, value in SI (pressures absolute), instrument, place.
 
-    `samples` are single readings in their order; `value` is then their mean.
+    `samples` are single readings in their order, `phases` one reading for each supply phase; `value` is then their
+    mean.
     """
 
     key: str
@@ -48,6 +49,7 @@ class Reading:
     instrument: str | None = None
     where: str = ""
     samples: tuple[float, ...] = ()
+    phases: tuple[float, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

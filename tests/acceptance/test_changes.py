@@ -91,3 +91,19 @@ def test_advice_on_the_limit_and_beyond_reach() -> None:
     )
     decided = decide(LIMIT + 5.0, stuck, LIMIT, None, "guarded")
     assert with_advice(decided, stuck) is decided
+
+
+def test_change_in_the_unit_where_it_arises() -> None:
+    """A change tells the standard uncertainty where it arises, before and after, whatever the budget is of."""
+    probe = Component(
+        "clamped on", 0.6, cause="liquid_temperature: clamped on", of="liquid_temperature", remedy="insulate"
+    )
+    capacity = Budget((probe.scaled(-50.0),))
+    change = smallest_change(capacity, 10.0)
+    assert change is not None
+    assert change.of == ("liquid_temperature",)
+    assert change.before == (pytest.approx(0.6),)
+    assert change.after == (pytest.approx(0.2, abs=1e-3),)
+    assert change.text == (
+        "bring the uncertainty from clamped on (liquid temperature) down to 33 % of what it is (insulate)"
+    )

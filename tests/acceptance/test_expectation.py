@@ -11,9 +11,10 @@ from commission.acceptance import Budget, Component, Measured, deviation, evalua
 from commission.acceptance.expectation import Expectation
 from commission.description import LoadedPlant
 from commission.prediction import SystemModel
-from commission.quantities import methods
+from commission.quantities import Explained, methods
 from tests.acceptance.visits import visit
 
+EXPLAINED = Explained("suction_pressure", 4e5, None, "suction_pressure")
 SINK, SOURCE = "heat_sink_inlet_temperature", "heat_source_inlet_temperature"
 
 
@@ -80,7 +81,7 @@ def test_deviation_keeps_the_shared_condition(cold_room: LoadedPlant, cold_room_
 
 def test_significance_and_ratio() -> None:
     """A deviation is significant beyond its expanded uncertainty; the ratio says by how much."""
-    expected = Expectation("suction_pressure", 4e5, Budget((Component("model", 3000.0),)), None)  # type: ignore[arg-type]
+    expected = Expectation("suction_pressure", 4e5, Budget((Component("model", 3000.0),)), EXPLAINED)
     near = deviation(Measured("suction_pressure", 4.05e5, Budget((Component("gauge", 4000.0),))), expected)
     far = deviation(Measured("suction_pressure", 4.11e5, Budget((Component("gauge", 4000.0),))), expected)
     assert near.budget.standard == pytest.approx(5000.0)
@@ -90,7 +91,7 @@ def test_significance_and_ratio() -> None:
 
 def test_few_samples_need_a_larger_deviation() -> None:
     """With two degrees of freedom a deviation of three standard uncertainties is not yet significant (t = 4.30)."""
-    expected = Expectation("power_input", 1000.0, Budget(), None)  # type: ignore[arg-type]
+    expected = Expectation("power_input", 1000.0, Budget(), EXPLAINED)
     few = Budget((Component("spread", 10.0, dof=2.0),))
     many = Budget((Component("spread", 10.0),))
     assert not deviation(Measured("power_input", 1030.0, few), expected).significant

@@ -50,6 +50,8 @@ def test_sheet_says_what_it_was_made_from(sheet: TestSheet, cold_room: LoadedPla
     capacity, power = sheet.targets_for("guarantee")
     assert capacity.instruments == ("low gauge", "pipe probes", "high gauge", "power meter", "air probe")
     assert power.instruments == ("power meter", "air probe")
+    assert capacity.reading_uncertainty is not None
+    assert 0.03 < capacity.reading_uncertainty / capacity.values[0] < 0.07
 
 
 def test_line_ends_of_another_system_do_not_break_it(sheet: TestSheet, tmp_path: Path) -> None:
