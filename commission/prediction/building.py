@@ -8,8 +8,6 @@ from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
 from commission.machine import (
-    Compressor,
-    EfficiencyShape,
     Exchanger,
     HeadPressure,
     Media,
@@ -21,6 +19,7 @@ from commission.machine import (
     conductance_for,
     liquid_stream,
 )
+from commission.prediction.compressors import compressor_of
 from commission.prediction.facts import CONDENSER_FAN, EVAPORATOR_FAN, Facts
 from commission.properties import Liquid
 
@@ -62,7 +61,7 @@ class Fans:
 
 @dataclass(frozen=True, slots=True)
 class Rated:
-    """The condition that levels belong to: media temperatures (K), expected heat (W), and the flows found there."""
+    """The condition that levels belong to: media temperatures (K), expected heat (W), flows (m3/s), speed (1/s)."""
 
     source_temperature: float
     sink_temperature: float
@@ -70,6 +69,7 @@ class Rated:
     sink_heat: float
     source_flow: float
     sink_flow: float
+    speed: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,18 +82,6 @@ class Plan:
     source_humidity: float
     surroundings: float | None
     power_factor: float
-
-
-def shape_of(a: Mapping[str, float]) -> EfficiencyShape:
-    """The run of the efficiencies over pressure ratio for the type of compressor."""
-    return EfficiencyShape(
-        clearance=a["compressor_clearance"],
-        expansion_exponent=1.1,
-        leakage=a["compressor_leakage"],
-        loss_suction=a["compressor_suction_loss"],
-        loss_discharge=a["compressor_discharge_loss"],
-        built_in_volume_ratio=a["compressor_volume_ratio"] or None,
-    )
 
 
 def humidity(facts: Facts, a: Mapping[str, float]) -> float:
@@ -183,15 +171,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     stated_superheat = system.expansion.superheat if system.expansion else None
     superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
     line, surroundings = suction_line(facts, a, rated, superheat)
-    one = system.compressor.displacement
-    displacement = one * system.compressor.count if one is not None else None
-    compressor = Compressor(
-        displacement=displacement or levels.swept_flow,
-        volumetric_level=levels.swept_flow / displacement if displacement else 1.0,
-        isentropic_level=levels.isentropic,
-        shape=shape_of(a),
-        shell_loss=a["shell_heat_loss_share"],
-    )
+    compressor = compressor_of(facts, a, levels.swept_flow, levels.isentropic)
     exponent = a["air_side_exponent"]
     control = system.controls.head_pressure
     held = None
@@ -248,7 +228,9 @@ def media(facts: Facts, plan: Plan, conditions: Mapping[str, float]) -> Media:
     source = _side(conditions, "heat_source", plan.rated.source_flow, facts.source_liquid, wet, facts.pressure)
     sink = _side(conditions, "heat_sink", plan.rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
     around = sink.temperature if plan.surroundings is None else plan.surroundings
-    return Media(source, sink, around)
+    speed = plan.rated.speed
+    share = conditions["compressor_speed"] / speed if speed and "compressor_speed" in conditions else 1.0
+    return Media(source, sink, around, share)
 
 
 def _side(

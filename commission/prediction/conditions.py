@@ -37,7 +37,18 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
         axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
     for key, flow in (("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)):
         axes.append(ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow))
-    return {axis.key: axis for axis in axes}
+    speed = _speed_axis(facts, rated.speed)
+    return {axis.key: axis for axis in (*axes, *speed)}
+
+
+def _speed_axis(facts: Facts, rated: float | None) -> tuple[ConditionAxis, ...]:
+    """The speed of a variable drive, where the speed of the rating is known."""
+    stated, controls = facts.system.compressor, facts.system.controls
+    if stated.drive != "variable speed" or rated is None:
+        return ()
+    low = controls.lowest_speed or stated.minimum_speed or 0.4 * rated
+    high = controls.highest_speed or stated.maximum_speed or 1.2 * rated
+    return (ConditionAxis("compressor_speed", rated, min(low, rated), max(high, rated)),)
 
 
 def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float]:

@@ -177,7 +177,9 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
             ),
         )  # fmt: skip
     compression = point.balance.compression
-    add(("refrigerant_flow",), Input("volumetric efficiency", compression.volumetric_efficiency, Kind.RATIO, "fitted"))
+    volumetric = compression.volumetric_efficiency
+    if system.compressor.displacement is not None and volumetric is not None:
+        add(("refrigerant_flow",), Input("volumetric efficiency", volumetric, Kind.RATIO, "fitted"))
     add(("compressor_power",), Input("isentropic efficiency", compression.isentropic_efficiency, Kind.RATIO, "fitted"))
     if system.compressor.displacement is not None:
         add(

@@ -24,6 +24,10 @@ class Used(Mapping[str, float]):
         self.keys_used.add(key)
         return value
 
+    def plain(self) -> dict[str, float]:
+        """All values, without counting any as used."""
+        return dict(self._values)
+
     def __iter__(self) -> Iterator[str]:
         return iter(self._values)
 

@@ -17,7 +17,7 @@ import numpy as np
 
 from commission.description import Assumption
 from commission.errors import NotCalculatedError
-from commission.machine import Balance, conductance_for
+from commission.machine import conductance_for
 from commission.prediction.building import (
     SINK_HUMIDITY,
     Levels,
@@ -38,12 +38,11 @@ from commission.prediction.rated import (
     Case,
     Datum,
     cases_of,
-    observed,
     rated_of,
     reference,
-    simulate,
     with_data,
 )
+from commission.prediction.simulating import Seen, observed, simulate
 
 SCATTER = "scatter of rated points"
 Array = np.ndarray[tuple[int, ...], np.dtype[np.float64]]
@@ -75,7 +74,7 @@ class Fit:
     used: Mapping[str, Assumption]
     values: Mapping[str, float]
     cases: tuple[Case, ...]
-    points: tuple[Balance, ...]
+    points: tuple[Seen, ...]
     scatter: float
     dof: int
     misses: tuple[tuple[Datum, float], ...]
@@ -88,13 +87,19 @@ class _Problem:
     facts: Facts
     cases: tuple[Case, ...]
     reference: int
+    fixed_compressor: bool
     fixed_evaporator: bool
     fixed_condenser: bool
     loose: tuple[str, ...]
 
     @property
     def free(self) -> tuple[int, ...]:
-        return (0, 1, *(() if self.fixed_condenser else (2,)), *(() if self.fixed_evaporator else (3,)))
+        """Numbers of the levels (in the order of `Levels`) that the fit may move."""
+        return (
+            *(() if self.fixed_compressor else (0, 1)),
+            *(() if self.fixed_condenser else (2,)),
+            *(() if self.fixed_evaporator else (3,)),
+        )
 
 
 def move(assumption: Assumption) -> float:
@@ -126,8 +131,10 @@ def _prepare(facts: Facts, a: Mapping[str, float]) -> tuple[_Problem, Levels]:
     rated = rated_of(facts, a, case)
     evaporator = _evaporator(facts, a, rated, case)
     condenser = condenser_conductance(facts, a, rated.sink_flow)
-    cases[middle] = with_data(case, tuple(_missing(facts, cases, evaporator is None, condenser is None)))
-    problem = _Problem(facts, tuple(cases), middle, evaporator is not None, condenser is not None, ())
+    published = facts.system.compressor.polynomial is not None and not any(c.data for c in cases)
+    missing = _missing(facts, cases, evaporator is None, condenser is None, published)
+    cases[middle] = with_data(case, tuple(missing))
+    problem = _Problem(facts, tuple(cases), middle, published, evaporator is not None, condenser is not None, ())
     return problem, _start(problem, a, rated)
 
 
@@ -141,7 +148,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
 
 
-def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool) -> list[Datum]:
+def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool, published: bool) -> list[Datum]:
     """Assumptions that stand in for data that nobody states, at the reference case."""
     stated = {d.of for c in cases for d in c.data}
     extra = []
@@ -155,13 +162,15 @@ def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: b
         assume("source_minus_evaporating", "source_minus_evaporating")
     if condenser and "condensing_temperature" not in stated:
         assume("condensing_minus_sink_inlet", "condensing_minus_sink_inlet")
-    if "power_input" not in stated and not {"cooling_capacity", "heating_capacity"} <= stated:
+    if published:
+        return extra
+    if not {"power_input", "compressor_power"} & stated and not {"cooling_capacity", "heating_capacity"} <= stated:
         value, origin = compressor.isentropic_efficiency, facts.origin("compressor.isentropic_efficiency")
         if value is not None:
             extra.append(Datum("isentropic_efficiency", value, 0.01 * value, origin))
         else:
             assume("isentropic_efficiency", "compressor_isentropic_efficiency")
-    if not {"cooling_capacity", "heating_capacity"} & stated:
+    if not {"cooling_capacity", "heating_capacity", "refrigerant_flow"} & stated:
         value, origin = compressor.volumetric_efficiency, facts.origin("compressor.volumetric_efficiency")
         if value is not None:
             extra.append(Datum("volumetric_efficiency", value, 0.01 * value, origin))
@@ -174,32 +183,50 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     """Levels from the reference point with dew points as stated or assumed, without any balance."""
     facts, case = problem.facts, problem.cases[problem.reference]
     given = {d.of: d.value for d in case.data}
-    if case.unit is not None:
-        evaporating = case.unit.evaporating
-    elif "evaporating_temperature" in given:
-        evaporating = given["evaporating_temperature"]
-    else:
-        evaporating = rated.source_temperature - given.get("source_minus_evaporating", a["source_minus_evaporating"])
-        evaporating += 0.35 * _glide(facts, evaporating)
-    condensing = given.get("condensing_temperature")
-    if condensing is None:
-        condensing = rated.sink_temperature + given.get("condensing_minus_sink_inlet", a["condensing_minus_sink_inlet"])
-        condensing += 0.5 * _glide(facts, condensing)
-    unit = Levels(1.0, 1.0, 1.0, 1.0)
-    plan = build(facts, a, unit, rated)
+    evaporating, condensing = _dew_points(problem, a, rated, given)
+    plan = build(facts, a, Levels(1.0, 1.0, 1.0, 1.0), rated)
     conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
     compression, source, _ = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
+    if problem.fixed_compressor:
+        heat = source + compression.power
+        return Levels(1.0, 1.0, *_conductances(problem, a, rated, evaporating, condensing, heat))
     swept = rated.source_heat / source
     power = given.get("power_input")
-    counted = plan.fans.counted(1.0) if power is not None else 0.0
+    if power is None and "cooling_capacity" not in given and "heating_capacity" not in given:
+        power = rated.sink_heat - rated.source_heat
+    counted = plan.fans.counted(1.0) if "power_input" in given else 0.0
     if power is not None and power <= counted:
         raise NotCalculatedError(
             f"the power input at {case.origin} ({power / 1e3:.2f} kW) is no more than the fans it is said to include "
             f"({counted / 1e3:.2f} kW): nothing is left for the compressor"
         )
-    isentropic = swept * compression.power / (power - counted) if power is not None else 0.65
+    isentropic = swept * compression.power / (power - counted) if power else 0.65
     heat = rated.source_heat + swept * compression.power / isentropic
     return Levels(swept, isentropic, *_conductances(problem, a, rated, evaporating, condensing, heat))
+
+
+def _dew_points(
+    problem: _Problem, a: Mapping[str, float], rated: Rated, given: Mapping[str, float]
+) -> tuple[float, float]:
+    """Evaporating and condensing dew points (K) at the reference point, as stated or assumed."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+
+    def assumed(key: str) -> float:
+        return given[key] if key in given else a[key]
+
+    if case.unit is not None:
+        evaporating = case.unit.evaporating
+    elif "evaporating_temperature" in given:
+        evaporating = given["evaporating_temperature"]
+    else:
+        evaporating = rated.source_temperature - assumed("source_minus_evaporating")
+        evaporating += 0.35 * _glide(facts, evaporating)
+    condensing = given.get("condensing_temperature")
+    if condensing is None:
+        difference = 12.0 if problem.fixed_condenser else assumed("condensing_minus_sink_inlet")
+        condensing = rated.sink_temperature + difference
+        condensing += 0.5 * _glide(facts, condensing)
+    return evaporating, condensing
 
 
 def _glide(facts: Facts, temperature: float) -> float:
@@ -236,12 +263,15 @@ def _plan(problem: _Problem, a: Mapping[str, float], levels: Levels) -> Plan:
     condenser = condenser_conductance(facts, a, rated.sink_flow) if problem.fixed_condenser else levels.condenser
     assert evaporator is not None
     assert condenser is not None
+    if problem.fixed_compressor:
+        flow = 1 + a["compressor_flow_departure"]
+        levels = replace(levels, swept_flow=flow, isentropic=flow / (1 + a["compressor_power_departure"]))
     return build(facts, a, replace(levels, evaporator=evaporator, condenser=condenser), rated)
 
 
 def _gaps(
-    problem: _Problem, a: Mapping[str, float], levels: Levels, starts: Sequence[Balance] | None
-) -> tuple[Array, Plan, tuple[Balance, ...]]:
+    problem: _Problem, a: Mapping[str, float], levels: Levels, starts: Sequence[Seen] | None
+) -> tuple[Array, Plan, tuple[Seen, ...]]:
     """(calculated - stated) / sigma of every datum; assumed data follow their assumption value."""
     plan = _plan(problem, a, levels)
     gaps, points = [], []
@@ -250,7 +280,7 @@ def _gaps(
         points.append(point)
         for datum in case.data:
             wanted = a[datum.assumption] if datum.assumption is not None else datum.value
-            gaps.append((observed(plan, case, point, a, datum.of) - wanted) / datum.sigma)
+            gaps.append((observed(point, datum.of) - wanted) / datum.sigma)
     return np.array(gaps), plan, tuple(points)
 
 
@@ -259,15 +289,15 @@ def _exact(
     a: Mapping[str, float],
     start: Levels,
     jacobian: list[Array] | None,
-    starts: Sequence[Balance] | None = None,
-) -> tuple[Levels, Plan, tuple[Balance, ...]]:
+    starts: Sequence[Seen] | None = None,
+) -> tuple[Levels, Plan, tuple[Seen, ...]]:
     """Newton for as many levels as data; `jacobian` (a list of one, or empty) is reused and refreshed as needed."""
     logs = np.array(start.logs())
     store = jacobian if jacobian is not None else []
     free = list(problem.free)
     gaps, plan, points = _gaps(problem, a, start, starts)
     for trial in range(30):
-        if float(np.abs(gaps).max()) < 1e-6:
+        if float(np.abs(gaps).max(initial=0.0)) < 1e-6:
             return Levels.from_logs(tuple(logs)), plan, points
         if not store or trial in (6, 12, 18):
             store[:] = [_level_jacobian(problem, a, logs, gaps, points)]
@@ -284,7 +314,7 @@ def _names(problem: _Problem) -> list[str]:
 
 
 def _level_jacobian(
-    problem: _Problem, a: Mapping[str, float], logs: Array, gaps: Array, starts: Sequence[Balance]
+    problem: _Problem, a: Mapping[str, float], logs: Array, gaps: Array, starts: Sequence[Seen]
 ) -> Array:
     columns = []
     for n in problem.free:
@@ -302,12 +332,10 @@ def _uncertain(facts: Facts, used: Used) -> list[str]:
     return [k for k in facts.assumptions if k in used.keys_used and facts.assumptions[k].standard_uncertainty > 0]
 
 
-def _exact_variants(
-    problem: _Problem, values: Used, levels: Levels, points: tuple[Balance, ...]
-) -> tuple[Variant, ...]:
+def _exact_variants(problem: _Problem, values: Used, levels: Levels, points: tuple[Seen, ...]) -> tuple[Variant, ...]:
     variants, store = [], list[Array]()
     for key in _uncertain(problem.facts, values):
-        a = _moved(problem.facts, dict(values), key)
+        a = _moved(problem.facts, values.plain(), key)
         try:
             _, plan, _ = _exact(problem, a, levels, store, points)
         except NotCalculatedError as error:
@@ -323,20 +351,20 @@ def _finish(
     problem: _Problem,
     levels: Levels,
     plan: Plan,
-    points: tuple[Balance, ...],
+    points: tuple[Seen, ...],
     values: Used,
     variants: tuple[Variant, ...],
     scatter: float,
     dof: int,
     at: Mapping[str, float] | None = None,
 ) -> Fit:
-    a = at if at is not None else values
+    a = at if at is not None else values.plain()
     used = {k: v for k, v in problem.facts.assumptions.items() if k in values.keys_used}
     misses = []
     for case, point in zip(problem.cases, points, strict=True):
         for datum in case.data:
             if datum.assumption is None:
-                misses.append((datum, observed(plan, case, point, a, datum.of) / datum.value - 1))
+                misses.append((datum, observed(point, datum.of) / datum.value - 1))
     return Fit(plan, levels, variants, used, dict(a), problem.cases, points, scatter, dof, tuple(misses))
 
 
@@ -345,7 +373,7 @@ def _fit_table(problem: _Problem, start: Levels, values: Used) -> Fit:
     build(problem.facts, values, start, rated_of(problem.facts, values, problem.cases[problem.reference]))
     _gaps(problem, values, start, None)
     problem = replace(problem, loose=tuple(_uncertain(problem.facts, values)))
-    table = _Table(problem, dict(values))
+    table = _Table(problem, values.plain())
     x, gaps, plan, points, matrix = table.minimum(table.pack(start))
     stated = np.array([d.assumption is None for c in problem.cases for d in c.data])
     dof = int(stated.sum()) - len(problem.free)
@@ -400,13 +428,13 @@ class _Table:
         levels, a = self.unpack(x)
         return _plan(self.problem, a, levels)
 
-    def gaps(self, x: Array, starts: Sequence[Balance] | None) -> tuple[Array, Plan, tuple[Balance, ...]]:
+    def gaps(self, x: Array, starts: Sequence[Seen] | None) -> tuple[Array, Plan, tuple[Seen, ...]]:
         """Misses of data and of assumptions, in standard uncertainties."""
         levels, a = self.unpack(x)
         data, plan, points = _gaps(self.problem, a, levels, starts)
         return np.concatenate([data, x[len(self.problem.free) :]]), plan, points
 
-    def minimum(self, x: Array) -> tuple[Array, Array, Plan, tuple[Balance, ...], Array]:
+    def minimum(self, x: Array) -> tuple[Array, Array, Plan, tuple[Seen, ...], Array]:
         """Gauss-Newton with the Jacobian of the start, made anew once near the minimum."""
         gaps, plan, points = self.gaps(x, None)
         columns = list(range(len(x)))
@@ -426,7 +454,7 @@ class _Table:
                 break
         return x, gaps, plan, points, matrix
 
-    def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Balance], columns: Sequence[int]) -> Array:
+    def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Seen], columns: Sequence[int]) -> Array:
         """By differences; `columns` are the unknowns that move a datum, the others are priors alone."""
         matrix = np.zeros((len(gaps), len(x)))
         for n in range(len(x)):

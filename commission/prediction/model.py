@@ -7,8 +7,8 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 from commission.description import Assumption, LoadedPlant
-from commission.errors import CommissionError, NotCalculatedError
-from commission.machine import OperatingPoint, StatePoint
+from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
+from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete
 from commission.prediction.expected import Found, beats_carnot, expected_values
@@ -17,7 +17,7 @@ from commission.prediction.facts import Facts, facts_of
 from commission.prediction.fitting import SCATTER, Fit, fit_system
 from commission.prediction.rated import reference
 from commission.properties import Refrigerant
-from commission.quantities import Explained, Input, Kind
+from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 
 PROPERTY = "property source"
 RATED_FIGURES = ("cooling_capacity", "net_cooling_capacity", "heating_capacity", "compressor_power", "power_input")
@@ -126,6 +126,35 @@ class SystemModel:
                 effects[cause] = change
         return effects
 
+    def infer(self, condition: str, key: str, reading: float, conditions: Mapping[str, float] | None = None) -> float:
+        """The condition (such as a speed nobody can read) at which the expected value of `key` is `reading`, SI.
+
+        The reading is spent on it: it cannot be judged as well.
+
+        Raises:
+            InputError: a condition or a quantity that this system does not have.
+            NotCalculatedError: no value within the range of the condition explains the reading.
+        """
+        if condition not in self.condition_axes:
+            raise InputError(Problem("this is no condition of this system", value=condition))
+        axis = self.condition_axes[condition]
+
+        def gap(x: Sequence[float]) -> Sequence[float]:
+            whole, _, _ = complete(self.condition_axes, {**(conditions or {}), condition: x[0] * axis.rated})
+            found, _ = self._values(self.fit.plan, whole, None)
+            if key not in found.values:
+                raise InputError(Problem("this quantity is not expected of this system", value=key))
+            return (found.values[key] / reading - 1,)
+
+        none = f"no {NOMENCLATURE[condition].label.lower()} within its range explains this reading"
+        try:
+            x = solve(gap, (1.0,), difference=1e-3, largest_step=0.3, tolerance=1e-7).x[0] * axis.rated
+        except NotCalculatedError as error:
+            raise NotCalculatedError(none) from error
+        if not axis.low * (1 - 1e-6) <= x <= axis.high * (1 + 1e-6):
+            raise NotCalculatedError(none)
+        return x
+
     def _values(
         self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
     ) -> tuple[Found, OperatingPoint]:
@@ -229,18 +258,19 @@ def _fitted(facts: Facts, found: Fit) -> dict[str, Input]:
     """What the fit found, for review: efficiencies at the rated points, levels, conductances."""
     machine = found.plan.machine
     point = found.points[reference(found.cases)]
+    balance = point.balance
+    assert balance is not None
     values: list[tuple[str, float, Kind]] = [
         ("isentropic efficiency at the rated point", point.compression.isentropic_efficiency, Kind.RATIO),
         ("swept flow times volumetric level", found.levels.swept_flow, Kind.VOLUME_FLOW),
         ("conductance of the condenser", machine.condenser.conductance, Kind.CONDUCTANCE),
         ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
-        ("condensing temperature at the rated point", point.condensing_temperature, Kind.TEMPERATURE),
-        ("evaporating temperature at the rated point", point.evaporating_temperature, Kind.TEMPERATURE),
+        ("condensing temperature at the rated point", balance.condensing_temperature, Kind.TEMPERATURE),
+        ("evaporating temperature at the rated point", balance.evaporating_temperature, Kind.TEMPERATURE),
     ]
-    if facts.system.compressor.displacement is not None:
-        values.insert(
-            0, ("volumetric efficiency at the rated point", point.compression.volumetric_efficiency, Kind.RATIO)
-        )
+    volumetric = point.compression.volumetric_efficiency
+    if facts.system.compressor.displacement is not None and volumetric is not None:
+        values.insert(0, ("volumetric efficiency at the rated point", volumetric, Kind.RATIO))
     if found.dof:
         values.append(("scatter of rated points about the fit", found.scatter, Kind.RATIO))
     return {name: Input(name, value, kind, "fitted") for name, value, kind in values}

@@ -8,16 +8,14 @@ from dataclasses import dataclass, replace
 from commission.description import Conditions, RatedPoint
 from commission.description.model import CondensingUnit
 from commission.errors import NotCalculatedError
-from commission.machine import Balance, Media
 from commission.prediction.building import (
     SINK_HUMIDITY,
-    Plan,
     Rated,
     flow_for,
     humidity,
-    media,
     stream,
 )
+from commission.prediction.compressors import estimate
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
 from commission.properties import moist_air
 
@@ -57,29 +55,88 @@ class Case:
 
 @dataclass(frozen=True, slots=True)
 class UnitRating:
-    """How a condensing unit is rated: dew point at its suction (K); superheat and subcooling, None where assumed."""
+    """How a condensing unit is rated: dew point at its suction (K); superheat and subcooling, None where assumed.
+
+    `condensing` (K) is given for a compressor that is rated alone, between two dew points.
+    """
 
     evaporating: float
     superheat: float | None
     subcooling: float | None
     counts_fan: bool | None
+    condensing: float | None = None
 
 
 def cases_of(facts: Facts) -> tuple[Case, ...]:
     """All rated points of the system, or those of its condensing unit where the system as a whole has none.
 
+    A table of the compressor alone is added to them; where it or polynomials are all that is stated, the design
+    condition stands first, without data of its own.
+
     Raises:
         NotCalculatedError: the description states no rated point from which the machine could be known.
     """
     system = facts.system
+    table = _table_cases(facts)
     if system.rated_points:
-        return tuple(_system_case(facts, n, point) for n, point in enumerate(system.rated_points))
+        return (*(_system_case(facts, n, point) for n, point in enumerate(system.rated_points)), *table)
     if system.condensing_unit is not None:
-        return _unit_cases(facts, system.condensing_unit)
+        return (*_unit_cases(facts, system.condensing_unit), *table)
+    if table or system.compressor.polynomial is not None:
+        return (_design_case(facts), *table)
     raise NotCalculatedError(
         "the description has no rated point: state under rated_points a cooling or heating capacity and its power "
         "input at one condition, or the rated points of the condensing unit"
     )
+
+
+def _table_cases(facts: Facts) -> tuple[Case, ...]:
+    """The points of a supplier's table of the compressor alone."""
+    table = facts.system.compressor.table
+    if table is None:
+        return ()
+    count = facts.system.compressor.count
+    cases = []
+    for number, point in enumerate(table.points):
+        path = f"compressor.table.points.{number}"
+        superheat = table.suction_superheat
+        if superheat is None and table.suction_temperature is not None:
+            superheat = table.suction_temperature - point.evaporating_temperature
+        figures = (
+            ("cooling_capacity", point.cooling_capacity),
+            ("refrigerant_flow", point.refrigerant_flow),
+            ("compressor_power", point.compressor_power),
+        )
+        data = tuple(
+            Datum(key, count * v, MARGIN * count * v, facts.origin(f"{path}.{key}"))
+            for key, v in figures
+            if v is not None
+        )
+        rating = UnitRating(
+            point.evaporating_temperature, superheat, table.liquid_subcooling, None, point.condensing_temperature
+        )
+        evaporating, condensing = point.evaporating_temperature, point.condensing_temperature
+        cases.append(Case(evaporating, condensing, {}, data, facts.origin(path), rating))
+    return tuple(cases)
+
+
+def _design_case(facts: Facts) -> Case:
+    """The design condition, at which flows and differences that nobody states are assumed."""
+    design = facts.system.design
+    conditions = {}
+    if design is not None:
+        conditions = {k: v for k in Conditions.model_fields if (v := getattr(design, k)) is not None}
+    for side in ("heat_source", "heat_sink"):
+        if not {f"{side}_inlet_temperature", f"{side}_outlet_temperature"} & set(conditions):
+            raise NotCalculatedError(
+                f"the compressor is stated, but not the condition it is to work at: write design with its "
+                f"{side}_inlet_temperature"
+            )
+    _one_temperature_each(facts, conditions, {})
+    _as_relative_humidity(facts, conditions)
+    source = conditions.get("heat_source_inlet_temperature", conditions.get("heat_source_outlet_temperature", 0.0))
+    sink = conditions.get("heat_sink_inlet_temperature", conditions.get("heat_sink_outlet_temperature", 0.0))
+    return Case(source, sink, conditions, (), facts.origin("design"))
 
 
 def _system_case(facts: Facts, number: int, point: RatedPoint) -> Case:
@@ -178,16 +235,17 @@ def _unit_cases(facts: Facts, unit: CondensingUnit) -> tuple[Case, ...]:
 
 
 def reference(cases: tuple[Case, ...]) -> int:
-    """Number of the case nearest to the middle of all: the one that the assumed differences belong to."""
+    """Number of the case nearest to the middle of all that have media: the assumed differences belong to it."""
+    whole = [n for n, c in enumerate(cases) if c.unit is None or c.unit.condensing is None]
     middle = [
-        sum(c.source_temperature for c in cases) / len(cases),
-        sum(c.sink_temperature for c in cases) / len(cases),
+        sum(cases[n].source_temperature for n in whole) / len(whole),
+        sum(cases[n].sink_temperature for n in whole) / len(whole),
     ]
 
     def distance(case: Case) -> float:
         return abs(case.source_temperature - middle[0]) + abs(case.sink_temperature - middle[1])
 
-    return min(range(len(cases)), key=lambda n: distance(cases[n]))
+    return min(whole, key=lambda n: distance(cases[n]))
 
 
 def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
@@ -202,6 +260,11 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
         cooling = heating - (power or 0.25 * heating)
     elif facts.system.compressor.displacement is not None and power:
         cooling, heating = 2.5 * power, 3.5 * power
+    elif facts.system.compressor.polynomial is not None or facts.system.compressor.table is not None:
+        evaporating = case.source_temperature - a["source_minus_evaporating"]
+        condensing = case.sink_temperature + a["condensing_minus_sink_inlet"]
+        cooling, power = estimate(facts, a, evaporating, condensing)
+        heating = cooling + power
     else:
         raise NotCalculatedError(
             f"the rated point at {case.origin} states no capacity, and the displacement of the compressor is not "
@@ -229,7 +292,8 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
     if "heat_sink_outlet_temperature" in case.conditions and "heat_sink_inlet_temperature" not in case.conditions:
         unit = stream(sink_temperature, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
         sink_temperature -= heating / unit.capacity_rate
-    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow)
+    speed = case.conditions.get("compressor_speed", facts.system.compressor.nominal_speed)
+    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow, speed)
 
 
 def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[float, float]:
@@ -244,56 +308,6 @@ def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[flo
         return rating.air_on, case.sink_temperature
     difference = rating.temperature_difference if rating is not None else a["source_minus_evaporating"]
     return case.unit.evaporating + difference, case.sink_temperature
-
-
-def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start: Balance | None) -> Balance:
-    """The balance of the model at a rated point.
-
-    Raises:
-        NotCalculatedError: there is none.
-    """
-    if case.unit is None:
-        return plan.machine.balance(media(facts, plan, case.conditions), start)
-    around = _unit_media(facts, plan, case)
-    unit = case.unit
-    superheat = unit.superheat if unit.superheat is not None else a["rating_superheat"]
-    subcooling = unit.subcooling if unit.subcooling is not None else a["rating_subcooling"]
-    return plan.machine.condensing_unit(unit.evaporating, superheat, subcooling, around, start)
-
-
-def _unit_media(facts: Facts, plan: Plan, case: Case) -> Media:
-    conditions = {**case.conditions, "heat_source_inlet_temperature": plan.rated.source_temperature}
-    return media(facts, plan, conditions)
-
-
-def observed(plan: Plan, case: Case, point: Balance, a: Mapping[str, float], of: str) -> float:
-    """What the model calculates for one datum, in SI."""
-    if of == "cooling_capacity":
-        return point.heat_from_source
-    if of == "heating_capacity":
-        return point.heat_to_sink
-    if of == "power_input":
-        return point.compression.power + _fans_counted(plan, case, point, a)
-    if of == "evaporating_temperature":
-        return point.evaporating_temperature
-    if of == "condensing_temperature":
-        return point.condensing_temperature
-    if of == "source_minus_evaporating":
-        return point.source_inlet_temperature - point.source_drive
-    if of == "condensing_minus_sink_inlet":
-        return point.sink_drive - point.sink_inlet_temperature
-    if of == "isentropic_efficiency":
-        return point.compression.isentropic_efficiency
-    if of == "volumetric_efficiency":
-        return point.compression.volumetric_efficiency
-    raise KeyError(of)
-
-
-def _fans_counted(plan: Plan, case: Case, point: Balance, a: Mapping[str, float]) -> float:
-    if case.unit is None:
-        return plan.fans.counted(point.sink_fan_share)
-    share = a["fans_in_rated_power"] if case.unit.counts_fan is None else float(case.unit.counts_fan)
-    return share * plan.fans.sink * point.sink_fan_share
 
 
 def with_data(case: Case, extra: tuple[Datum, ...]) -> Case:

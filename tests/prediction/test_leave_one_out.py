@@ -7,7 +7,7 @@ import math
 import pytest
 
 from commission.description import LoadedPlant
-from commission.prediction import fitting, rated
+from commission.prediction import fitting, rated, simulating
 from commission.prediction.facts import facts_of
 
 
@@ -19,13 +19,13 @@ def _misses(example: LoadedPlant, monkeypatch: pytest.MonkeyPatch) -> list[tuple
     for left in cases:
         monkeypatch.setattr(fitting, "cases_of", lambda _, left=left: tuple(c for c in cases if c is not left))
         fit = fitting.fit_system(facts)
-        point = rated.simulate(facts, fit.values, fit.plan, left, None)
+        point = simulating.simulate(facts, fit.values, fit.plan, left, None)
         for datum in left.data:
-            value = rated.observed(fit.plan, left, point, fit.values, datum.of)
+            value = simulating.observed(point, datum.of)
             square = (fit.scatter * value) ** 2
             for variant in fit.variants:
-                moved = rated.simulate(facts, fit.values, variant.plan, left, point)
-                square += (rated.observed(variant.plan, left, moved, fit.values, datum.of) - value) ** 2
+                moved = simulating.simulate(facts, fit.values, variant.plan, left, point)
+                square += (simulating.observed(moved, datum.of) - value) ** 2
             found.append((datum.of, (value - datum.value) / math.sqrt(square), value / datum.value - 1))
     return found
 
