@@ -154,7 +154,7 @@ def no_head_pressure_in_winter(facts: SystemFacts) -> Iterator[Remark]:
     yield Remark(
         facts.severity("coldest", "warning"),
         facts.path("controls"),
-        f"Nothing holds up the condensing pressure of {facts.title} on the coldest day.",
+        f"Nothing that is written holds up the condensing pressure of {facts.title} on the coldest day.",
         (
             explained_figure(facts.plant, condensing, "expected condensing temperature"),
             facts.plant.threshold_figure("winter_condensing", "usually held above"),

@@ -68,7 +68,7 @@ def coil_can_frost(facts: SystemFacts) -> Iterator[Remark]:
         if coldest is None or coldest >= ICE:
             continue
         yield Remark(
-            facts.severity(name, "warning"),
+            "note",
             facts.path("evaporator"),
             f"The coil of {facts.title} can frost {facts.outlooks[name].name} and no defrost is written.",
             (facts.plant.figure("refrigerant where it enters the coil", coldest, Kind.TEMPERATURE),),
