@@ -16,7 +16,7 @@ from commission.description.plant import LoadedPlant, load_plant
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.description.reading import ReadFile, read_yaml
 from commission.description.reference import KeyRow, json_schema, key_reference
-from commission.description.schedule import from_schedule
+from commission.description.schedule import from_schedule, schedule_columns
 from commission.description.starting import DUTIES, new_plant
 
 __all__ = [
@@ -46,5 +46,6 @@ __all__ = [
     "load_plant",
     "new_plant",
     "read_yaml",
+    "schedule_columns",
     "validate",
 ]

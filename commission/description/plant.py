@@ -97,6 +97,10 @@ def load_plant(folder: Path | str) -> LoadedPlant:
         raise DescriptionError(
             Problem("there is no such folder", file=str(folder), allowed=f"a folder that holds {PLANT_FILE}")
         )
+    if not (folder / PLANT_FILE).exists():
+        raise DescriptionError(
+            Problem("there is no such file", file=PLANT_FILE, allowed=f"a folder that holds it; {folder} does not")
+        )
     whole = assemble(folder)
     plant = validate(Plant, whole.data, whole.positions, also=whole.problems)
     barometric_pressure = site_pressure(plant)

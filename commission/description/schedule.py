@@ -53,6 +53,21 @@ _MEDIA_OF_DUTY = {
 """Usual media, taken where the schedule has no column for them and written into the description to be looked at."""
 
 
+_OUTDOORS = {
+    "outdoors",
+    "outdoor",
+    "outside",
+    "roof",
+    "rooftop",
+    "yard",
+    "garden",
+    "court",
+    "courtyard",
+    "balcony",
+    "terrace",
+}
+"""Words in the name of a place that say it is in the open air; the description then shows `outdoors: yes`."""
+
 _WORDS = (
     "id", "name", "duty", "serves", "refrigerant", "installed_on", "nameplate.maker_type", "nameplate.serial",
     "nameplate.year", "nameplate.phases", "point.source", "note",
@@ -125,11 +140,12 @@ def _with_heading(problem: Problem, sheet: _Sheet) -> Problem:
 
 def main_headings() -> Mapping[str, str]:
     """The heading named first for each key path, such as `duty` or `sink inlet`, by the last part of the path."""
-    return {key.rpartition(".")[2]: headings[0] for key, headings in _book().items()}
+    return {key.rpartition(".")[2]: headings[0] for key, headings in schedule_columns().items()}
 
 
 @cache
-def _book() -> Mapping[str, list[str]]:
+def schedule_columns() -> Mapping[str, list[str]]:
+    """What each column may hold (a key path of a description) and the headings that mean it, for the manual too."""
     text = (files("commission.description") / "schedule_columns.yaml").read_text(encoding="utf-8")
     book: Mapping[str, list[str]] = read_yaml(text, "schedule_columns.yaml").data
     return book
@@ -139,7 +155,7 @@ def _book() -> Mapping[str, list[str]]:
 def columns_by_heading() -> Mapping[str, str]:
     """Every known heading in its plain form, with what it means."""
     table: dict[str, str] = {}
-    for key, headings in _book().items():
+    for key, headings in schedule_columns().items():
         for heading in [*headings, *([key.partition(".")[2]] if "." in key else [])]:
             table.setdefault(_plain(heading), key)
     return table
@@ -169,7 +185,7 @@ def _columns(table: Table, sheet: _Sheet) -> tuple[list[Column], int]:
         if key is None:
             near = nearest(_plain(word), known, cutoff=0.8)
             if near:
-                allowed = ", ".join(headings[0] for headings in _book().values())
+                allowed = ", ".join(headings[0] for headings in schedule_columns().values())
                 sheet.problems.append(_at(cell, "this heading is not known", allowed=allowed, near=near))
             key = "note"
         sheet.weigh(unit)
@@ -275,7 +291,8 @@ def _put(sheet: _Sheet, system: dict[str, Any], path: KeyPath, key: str, text: s
     if key.startswith("space_"):
         part = key.removeprefix("space_")
         space = re.sub(r"[^\w -]+", " ", text).strip() or text
-        sheet.spaces.setdefault(space, {"name": text})
+        outdoors = {"outdoors": "yes"} if _OUTDOORS & set(_plain(text).split()) else {}
+        sheet.spaces.setdefault(space, {"name": text, **outdoors})
         system.setdefault("spaces", {})[part] = space
         inside = ("spaces", part)
     elif key.startswith("point."):

@@ -33,6 +33,7 @@ def test_a_us_schedule(tmp_path: Path) -> None:
     assert walk_in.heat_source.flow == pytest.approx(1900 * 0.3048**3 / 60)
     assert chiller.rated_points[0].cooling_capacity == pytest.approx(25 * 3516.8528, abs=0.1)
     assert chiller.spaces.condensing_unit == "Yard"
+    assert loaded.plant.spaces["Roof"].outdoors
     text = (tmp_path / "lodge/plant.yaml").read_text(encoding="utf-8")
     assert text.startswith("# yaml-language-server: $schema=./plant.schema.json\n")
     assert "# MCA: 22 A" in text

@@ -78,7 +78,11 @@ class FigureOverride(Part):
 class System(Part):
     """One refrigerating system."""
 
-    like: str | None = Field(None, description="id of a system whose description this one takes over, key by key")
+    like: str | None = Field(
+        None,
+        description="id of a system whose description this one takes over, key by key; name, spaces, serial number, "
+        "year, day of installation, guarantee and documents are never taken over",
+    )
     without: tuple[str, ...] = Field((), description="keys that are not taken over from the system named by like")
     name: str | None = Field(None, description="name as people on site say it")
     duty: Duty = Field(description="what the system is for")
