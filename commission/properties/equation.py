@@ -122,8 +122,11 @@ class Equation:
             rho += max(-0.5 * rho, min(0.5 * rho, step))
         raise self._lost(T, p)
 
-    def solve(self, p: float, name: str, value: float, rho: float, T: float) -> Point:
+    def solve(self, p: float, name: str, value: float, rho: float, T: float, *, alike: bool = False) -> Point:
         """The single-phase point with pressure `p` and `name` ('h' or 's') equal to `value`, from (rho, T).
+
+        `alike` allows states that are not stable by themselves, as next to the critical point the mean of two alike
+        phases is; it is for pressures beyond the end of the dew line only.
 
         Raises:
             PropertyRangeError: no convergence to a mechanically stable state.
@@ -131,7 +134,7 @@ class Equation:
         entropy = name == "s"
         for _ in range(MAX_STEPS):
             point = self.at(rho, T)
-            if not point.p_rho > 0 or not point.cv > 0:
+            if not (point.p_rho > 0 or alike) or not point.cv > 0:
                 break
             if entropy:
                 miss, by_rho, by_T = value - point.s, point.s_rho, point.s_t

@@ -17,6 +17,7 @@ from commission.properties.saturation import EDGE, Saturation
 from commission.properties.states import SaturationState, Slopes, State
 
 if TYPE_CHECKING:
+    from commission.properties.beyond import Beyond
     from commission.properties.equation import Equation, Point
     from commission.properties.lines import FluidData, Line
     from commission.properties.register import RegisterEntry
@@ -42,6 +43,12 @@ class Refrigerant(Saturation):
         self.property_source = data.property_source
         self._equation: Equation = Equation(data)
 
+    @cached_property
+    def _beyond(self) -> Beyond:
+        from commission.properties.beyond import Beyond
+
+        return Beyond(self, self._equation)
+
     @property
     def calls(self) -> int:
         """Calls of the equation of state made for this refrigerant by the present thread."""
@@ -61,11 +68,19 @@ class Refrigerant(Saturation):
 
         return pressure_relative_uncertainty(self, self.register)
 
+    @cached_property
+    def warnings(self) -> tuple[str, ...]:
+        """Sentences that belong to every result of this refrigerant; see `uncertainty.source_warnings`."""
+        from commission.properties.uncertainty import source_warnings
+
+        return source_warnings(self, self.register)
+
     def with_register(self, entry: RegisterEntry) -> Refrigerant:
         """The same refrigerant with another register entry, as a plant states it; see `register.register`."""
         other = object.__new__(Refrigerant)
         other.__dict__.update(self.__dict__)
-        other.__dict__.pop("pressure_relative_uncertainty", None)
+        for derived in ("pressure_relative_uncertainty", "warnings"):
+            other.__dict__.pop(derived, None)
         other.__dict__["register"] = entry
         return other
 
@@ -84,7 +99,9 @@ class Refrigerant(Saturation):
         """
         self._need_gas_temperature(T)
         if p > self.p_dew_high:
-            return _state(self._above(T, p))
+            self._beyond.need(p)
+            self._beyond.need_vapour(T, p)
+            return _state(self._beyond.at(T, p))
         T_dew, start = self._vapour_start(T, p)
         if T_dew * (1 - EDGE) > T:
             raise PropertyRangeError(
@@ -99,14 +116,17 @@ class Refrigerant(Saturation):
             PropertyRangeError: pressure below the bubble point (vapour would form), or `T` outside the range.
         """
         if p > self.p_dew_high and not self.is_blend and self.T_high < T:
-            return _state(self._above(T, p))
+            self._need_gas_temperature(T)
+            self._beyond.need_liquid(T, p)
+            return _state(self._beyond.at(T, p))
         self._need_temperature(T)
         ln_p, _, _, ln_rho = self._bubble.row(T)
         if not p >= math.exp(ln_p) * (1 - EDGE):
             raise PropertyRangeError(
                 self.name, f"{bar(p)} is below the bubble point {bar(math.exp(ln_p))} at {celsius(T)}: vapour forms"
             )
-        self._need_below_highest_pressure(p)
+        if not p <= self.p_max:
+            raise PropertyRangeError(self.name, f"{bar(p)} is above {bar(self.p_max)}, where the equation ends")
         return _state(self._equation.density(T, p, math.exp(ln_rho)))
 
     def supercritical(self, T: float, p: float) -> State:
@@ -117,7 +137,9 @@ class Refrigerant(Saturation):
         """
         if not p >= self.p_critical:
             raise PropertyRangeError(self.name, f"{bar(p)} is not above the critical pressure {bar(self.p_critical)}")
-        return _state(self._above(T, p))
+        self._beyond.need(p)
+        self._need_gas_temperature(T)
+        return _state(self._beyond.at(T, p))
 
     def slopes(self, state: State) -> Slopes:
         """First derivatives of a single-phase `state` at constant pressure and at constant temperature."""
@@ -144,16 +166,6 @@ class Refrigerant(Saturation):
         gap = 1 - p * self.molar_mass / (8.314462618 * T_dew * rho_dew)
         return T_dew, ideal / (1 - gap * (T_dew / max(T, T_dew)) ** 3)
 
-    def _above(self, T: float, p: float) -> Point:
-        """Beyond the end of the dew line: only a pure fluid above its critical pressure has states there."""
-        if self.is_blend or not p >= self.p_critical:
-            raise PropertyRangeError(
-                self.name, f"{bar(p)} is above {bar(self.p_dew_high)}, where the known dew line ends"
-            )
-        self._need_gas_temperature(T)
-        self._need_below_highest_pressure(p)
-        return self._equation.dense(T, p, 1.3 * math.exp(self._bubble.row(self.T_low)[3]))
-
     def _need_gas_temperature(self, T: float) -> None:
         if not self.T_low <= T <= self.T_max:
             raise PropertyRangeError(
@@ -161,10 +173,6 @@ class Refrigerant(Saturation):
                 f"{celsius(T)} is outside {celsius(self.T_low)} to {celsius(self.T_max)}, "
                 "where the equation of state holds",
             )
-
-    def _need_below_highest_pressure(self, p: float) -> None:
-        if not p <= self._data.p_max:
-            raise PropertyRangeError(self.name, f"{bar(p)} is above {bar(self._data.p_max)}, where the equation ends")
 
     # From pressure with enthalpy or entropy
 
@@ -175,7 +183,7 @@ class Refrigerant(Saturation):
             PropertyRangeError: the end lies outside the range, or in the liquid.
         """
         if p > self.p_dew_high:
-            return self._isentropic_above(state, p)
+            return _state(self._held(self._beyond.isentropic_end(state, p)))
         return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region")
 
     def vapour_from_enthalpy(self, p: float, h: float) -> State:
@@ -185,7 +193,7 @@ class Refrigerant(Saturation):
             PropertyRangeError: `h` below the dew line, or the state outside the range.
         """
         if p > self.p_dew_high:
-            return self._above_from_enthalpy(p, h)
+            return self._from_enthalpy_beyond(p, h)
         return self._vapour_or_wet(p, "h", h, wet=None)
 
     def throttled(self, p: float, h: float) -> State:
@@ -195,7 +203,7 @@ class Refrigerant(Saturation):
             PropertyRangeError: outside the range.
         """
         if p > self.p_dew_high:
-            return self._above_from_enthalpy(p, h)
+            return self._from_enthalpy_beyond(p, h)
         isobar = self._wet(p)
         x = isobar.fraction(h)
         if x > 1:
@@ -265,37 +273,10 @@ class Refrigerant(Saturation):
             raise PropertyRangeError(self.name, f"liquid colder than {celsius(self.T_low)}, where the equation ends")
         return _state(point)
 
-    def _isentropic_above(self, state: State | SaturationState, p: float) -> State:
-        """Along the isentrope in steps of pressure, each started by the slope at the last: robust past critical."""
-        self._need_supercritical(p)
-        point = self._equation.at(state.rho, state.T)
-        steps = max(1, math.ceil(math.log(p / state.p) / 0.4)) if p > state.p else 4
-        for k in range(1, steps + 1):
-            p_next = state.p * (p / state.p) ** (k / steps)
-            determinant = point.p_rho * point.s_t - point.p_t * point.s_rho
-            d_p = p_next - point.p
-            rho = point.rho * math.exp(point.s_t * d_p / determinant / point.rho * _log_share(p_next, point.p))
-            T = point.T * math.exp(-point.s_rho * d_p / determinant / point.T * _log_share(p_next, point.p))
-            point = self._equation.solve(p_next, "s", state.s, rho, T)
-        return _state(self._held(point))
-
-    def _above_from_enthalpy(self, p: float, h: float) -> State:
-        """At supercritical pressure, where temperature and enthalpy rise together, so that there is one state.
-
-        Newton in density and temperature, in which the equation is smooth through the critical region, so that one
-        start in its middle does for all.
-        """
-        self._need_supercritical(p)
-        ends = self._dew.row(self.T_high), self._bubble.row(self.T_high)
-        middle = 0.5 * sum(math.exp(end[3]) for end in ends)
-        return _state(self._held(self._equation.solve(p, "h", h, middle, 1.02 * self.T_critical)))
-
-    def _need_supercritical(self, p: float) -> None:
-        if self.is_blend or not p >= self.p_critical:
-            raise PropertyRangeError(
-                self.name, f"{bar(p)} is above {bar(self.p_dew_high)}, where the known dew line ends"
-            )
-        self._need_below_highest_pressure(p)
+    def _from_enthalpy_beyond(self, p: float, h: float) -> State:
+        state = self._beyond.from_enthalpy(p, h)
+        self._need_gas_temperature(state.T)
+        return state
 
     def _agrees(self) -> bool:
         """Whether the lines belong to the equation of state at hand: another edition of it would move a dew point."""
@@ -307,11 +288,6 @@ class Refrigerant(Saturation):
         """The point, if its temperature is inside the range of the equation."""
         self._need_gas_temperature(point.T)
         return point
-
-
-def _log_share(p_next: float, p: float) -> float:
-    """Turns a straight step in pressure into one in its logarithm, which an isentrope follows more closely."""
-    return math.log(p_next / p) * p / (p_next - p)
 
 
 def _at_pressure(line: Line, T: float, p: float) -> SaturationState:

@@ -9,7 +9,7 @@ from commission.properties.errors import PropertyRangeError, bar, celsius
 from commission.properties.states import SaturationSlopes, SaturationState
 
 if TYPE_CHECKING:
-    from commission.properties.lines import FluidData, Line
+    from commission.properties.lines import Array, FluidData, Line
 
 NEAR_CRITICAL = 0.97  # of the critical temperature: above, small errors of a model become large ones of its pressures
 EDGE = 1e-8  # relative; a state this close to a line counts as on it, since lines are exact to about this
@@ -26,6 +26,7 @@ class Saturation:
         self.p_critical = data.p_critical
         self.T_triple = data.T_triple
         self.T_max = data.T_max
+        self.p_max = data.p_max
         self.T_low = data.T_low
         self.T_high = data.T_high
         self.is_blend = len(data.fluids) > 1
@@ -81,10 +82,29 @@ class Saturation:
         self._need_temperature(T)
         return SaturationSlopes(*self._bubble.slopes(T))
 
+    def dew_rows(self, T: Array) -> Array:
+        """p (Pa), h (J/kg), s (J/(kg K)) and rho (kg/m3) of the dew line for an array of `T` (K): shape (4, *T.shape).
+
+        Raises:
+            PropertyRangeError: any temperature outside the line.
+        """
+        return self._rows(self._dew, T)
+
+    def bubble_rows(self, T: Array) -> Array:
+        """The same of the bubble line. Raises PropertyRangeError for any temperature outside the line."""
+        return self._rows(self._bubble, T)
+
+    def _rows(self, line: Line, T: Array) -> Array:
+        for end in (T.min(), T.max()):  # NaN is either
+            self._need_temperature(float(end))
+        rows = line.rows(T)
+        rows[(0, 3), :] = math.e ** rows[(0, 3), :]
+        return rows
+
     def continued_bubble_pressure(self, T: float) -> float:
         """Bubble pressure (Pa) at `T` (K), and above `T_high` its continuation straight in ln p against 1/T.
 
-        Not a property of the fluid there: a smooth bridge for a solver that passes the critical temperature.
+        Not a property of the fluid above its critical temperature: a smooth bridge for a solver that passes it.
 
         Raises:
             PropertyRangeError: colder than `T_low`.

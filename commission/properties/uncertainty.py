@@ -15,11 +15,14 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
+from commission.properties.errors import celsius
+
 if TYPE_CHECKING:
     from commission.properties.refrigerant import Refrigerant
     from commission.properties.register import Figure, RegisterEntry
 
 ATMOSPHERE = 101325.0
+CRITICAL_DISTANCE = 3.0  # K
 PURE_HALF_WIDTH, BLEND_HALF_WIDTH, NOT_SURE_HALF_WIDTH = 0.03, 0.2, 0.4  # K
 
 
@@ -33,6 +36,24 @@ def boiling_point_distance(refrigerant: Refrigerant, entry: RegisterEntry) -> fl
         if figure is not None and figure.number is not None:
             distances.append(abs(temperature(ATMOSPHERE) - figure.number))
     return max(distances, default=None)
+
+
+def source_warnings(refrigerant: Refrigerant, entry: RegisterEntry) -> tuple[str, ...]:
+    """What a reader must know of the property source of this refrigerant beyond its stated uncertainty.
+
+    A critical temperature more than 3 K from the published one (common practice, no source) means that the parameters
+    of the mixture are estimates, so that pressures at condensing temperatures are less sure than the boiling point
+    says.
+    """
+    published = entry.critical_temperature
+    if published is None or published.number is None:
+        return ()
+    if abs(refrigerant.T_critical - published.number) <= CRITICAL_DISTANCE:
+        return ()
+    return (
+        f"{refrigerant.name}: the property source puts the critical temperature at {celsius(refrigerant.T_critical)}, "
+        f"published is {celsius(published.number)}: pressures at condensing temperatures are less sure than stated",
+    )
 
 
 def temperature_uncertainty(refrigerant: Refrigerant, entry: RegisterEntry) -> float:

@@ -8,7 +8,7 @@ from itertools import pairwise
 import numpy as np
 import pytest
 
-from commission.properties import refrigerant
+from commission.properties import PropertyRangeError, refrigerant
 from commission.properties.models import blends, modelled
 from tests.properties.plausible import check_cycle, cycles
 
@@ -148,3 +148,31 @@ def test_the_line_is_continued_smoothly_past_the_critical_point() -> None:
     assert above > below
     assert (above - below) / 2e-3 == pytest.approx(r.bubble(r.T_high).p * r.bubble_slopes(r.T_high).ln_p, rel=1e-3)
     assert r.continued_bubble_pressure(313.15) > r.p_critical
+
+
+@pytest.mark.parametrize("name", ["R-744", "R-23", "R-32"])
+def test_nothing_jumps_between_the_end_of_the_line_and_the_critical_pressure(name: str) -> None:
+    """Pressure swept from wet states through the critical point at constant enthalpy: temperature moves under 20 mK."""
+    r = refrigerant(name)
+    dew, bubble = r.dew(r.T_high), r.bubble(r.T_high)
+    pressures = np.linspace(0.98 * r.p_dew_high, 1.02 * r.p_critical, 801)
+    warned = 0
+    for h in np.linspace(bubble.h - 30e3, dew.h + 60e3, 10):
+        states = [r.throttled(float(p), float(h)) for p in pressures]
+        assert max(abs(b.T - a.T) for a, b in pairwise(states)) < 0.02
+        assert all(a.p == pytest.approx(p, rel=1e-9) for a, p in zip(states, pressures, strict=True))
+        warned += sum("two alike phases" in w for s in states for w in s.warnings)
+    assert warned > 0
+
+
+@pytest.mark.parametrize("name", ["R-744", "R-1234yf"])
+def test_next_to_the_critical_point_a_state_is_vapour_or_liquid_not_both(name: str) -> None:
+    """Between the end of the lines and the critical pressure exactly one of the two calls answers below Tc."""
+    r = refrigerant(name)
+    for p in np.linspace(r.p_dew_high * 1.0001, r.p_critical * 0.9999, 8):
+        for T in np.linspace(r.T_high - 2, r.T_critical - 0.01, 20):
+            is_vapour = p < r.continued_bubble_pressure(float(T))
+            answers, refuses = (r.vapour, r.liquid) if is_vapour else (r.liquid, r.vapour)
+            assert answers(float(T), float(p)).rho > 0
+            with pytest.raises(PropertyRangeError, match="vapour forms|not vapour alone"):
+                refuses(float(T), float(p))

@@ -11,9 +11,9 @@ import numpy as np
 import pytest
 
 from commission.errors import NotCalculatedError
-from commission.properties import generate_lines, lines, refrigerant
+from commission.properties import PropertyRangeError, generate_lines, lines, refrigerant
 from commission.properties.coolprop import version
-from commission.properties.generate_lines import build
+from commission.properties.generate_lines import build, critical_point
 from commission.properties.models import model_of, modelled
 from commission.properties.refrigerant import _make
 
@@ -75,6 +75,26 @@ def test_vectorised_rows_are_the_single_ones() -> None:
     many = line.rows(T)
     for k, t in enumerate(T):
         assert many[:, k] == pytest.approx(line.row(float(t)), rel=1e-12)
+
+
+def test_arrays_of_saturation_states() -> None:
+    """Both lines as arrays agree with single states; one temperature outside refuses the whole."""
+    r = refrigerant("R-455A")
+    T = np.array([[230.0, 260.0], [290.0, 320.0]])
+    for rows, line in ((r.dew_rows, r.dew), (r.bubble_rows, r.bubble)):
+        p, h, s, rho = rows(T)
+        one = line(290.0)
+        assert (p[1, 0], h[1, 0], s[1, 0], rho[1, 0]) == pytest.approx((one.p, one.h, one.s, one.rho), rel=1e-9)
+        for wrong in (100.0, 400.0, np.nan):
+            with pytest.raises(PropertyRangeError):
+                rows(np.array([280.0, wrong]))
+
+
+@pytest.mark.parametrize("name", ["R-290", "R-454C"])
+def test_critical_points_of_the_models_are_the_librarys(name: str) -> None:
+    """The data file holds what the generator's own search finds."""
+    fluids, fractions, stated = model_of(name)
+    assert critical_point(fluids, fractions) == pytest.approx(stated, rel=1e-6)
 
 
 def test_data_of_another_edition_are_made_anew(monkeypatch: pytest.MonkeyPatch) -> None:
