@@ -59,7 +59,7 @@ def write_new(path: Path, data: bytes) -> None:
     try:
         _name_without_overwriting(part, path)
     finally:
-        part.unlink(missing_ok=True)
+        _drop(part)
     _flush_folder(path.parent)
 
 
@@ -82,7 +82,7 @@ def copy_new(source: Path, path: Path) -> None:
         message = f"this file cannot be copied to {path}: {error.strerror}"
         raise FolderError(Problem(message, file=str(source))) from None
     finally:
-        part.unlink(missing_ok=True)
+        _drop(part)
     _flush_folder(path.parent)
 
 
@@ -96,7 +96,7 @@ def replace(path: Path, data: bytes) -> None:
     try:
         os.replace(part, path)
     except OSError as error:
-        part.unlink(missing_ok=True)
+        _drop(part)
         raise FolderError(Problem(f"this file cannot be written: {error.strerror}", file=str(path))) from None
     _flush_folder(path.parent)
 
@@ -161,6 +161,12 @@ def _part_of(path: Path) -> Path:
     return path.with_name(f".{path.name}.{os.getpid()}{PART}")
 
 
+def _drop(part: Path) -> None:
+    """Remove a part file where there is one; the error that is under way says more than a failure here would."""
+    with contextlib.suppress(OSError):
+        part.unlink()
+
+
 def _write_part(path: Path, data: bytes) -> Path:
     part = _part_of(path)
     try:
@@ -170,7 +176,7 @@ def _write_part(path: Path, data: bytes) -> Path:
             file.flush()
             os.fsync(file.fileno())
     except OSError as error:
-        part.unlink(missing_ok=True)
+        _drop(part)
         raise FolderError(Problem(f"this file cannot be written: {error.strerror}", file=str(path))) from None
     return part
 

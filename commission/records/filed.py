@@ -21,6 +21,7 @@ from commission.description.model import Part
 from commission.description.positions import DescriptionError
 from commission.errors import InputError, Problem
 from commission.records.model import Moment, RecordFile
+from commission.records.sums import SumsError, read_sums
 from commission.records.text import FILED_KEY, seal_holds
 
 FORM = 1
@@ -258,9 +259,13 @@ def read_folder(folder: Path) -> RecordsFolder:
     records: list[FiledRecord] = []
     damaged: list[Problem] = []
     drafts: list[str] = []
+    try:
+        listed = read_sums(folder)
+    except SumsError:
+        listed = {}  # check_files says what is wrong with the list
     for path in sorted(folder.glob("*.yaml")) if folder.is_dir() else ():
         try:
-            if seal_holds(path.read_bytes()) is None:
+            if seal_holds(path.read_bytes()) is None and path.name not in listed:
                 drafts.append(path.name)
             else:
                 records.append(read_filed(path))

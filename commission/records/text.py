@@ -54,11 +54,11 @@ def with_filed_block(written: str, data: Mapping[str, Any], filed: Mapping[str, 
 
 
 def seal_holds(content: bytes) -> bool | None:
-    """Whether a filed record's seal fits the bytes above it; None where it has none (it was never filed)."""
-    head, mark, tail = content.rpartition(_SEAL.encode())
-    if not mark or not head.endswith(b"\n"):
+    """Whether a filed record's seal fits the bytes above it; None where it has no `filed:` block (never filed)."""
+    if f"\n{FILED_KEY}:\n".encode() not in content:
         return None
-    return tail.rstrip(b"\n").decode("ascii", "replace") == digest_of(head)
+    head, mark, tail = content.rpartition(b"\n" + _SEAL.encode())
+    return bool(mark) and tail.rstrip(b"\n").decode("ascii", "replace") == digest_of(head + b"\n")
 
 
 def _can_be_extended(body: str, data: Mapping[str, Any], block: str) -> bool:

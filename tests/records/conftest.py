@@ -71,7 +71,8 @@ purpose: Items that the tests know.
 after: performance
 items:
   - {id: visit.clean, do: See that it is clean., answer: yes/no, source: common practice}
-  - {id: visit.setting, do: Read the setting., answer: value, unit: bar g, must_read: {at_most: 22 bar g}, source: common practice}
+  - {id: visit.setting, do: Read the setting., answer: value, unit: bar g, must_read: {at_most: 22 bar g},
+     source: common practice}
   - {id: visit.suction, do: Read the gauge., answer: value, quantity: suction_pressure, source: common practice}
   - {id: visit.paper, do: File the paper., answer: file, source: common practice}
   - {id: visit.words, do: Say what you saw., answer: text, source: common practice}

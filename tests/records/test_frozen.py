@@ -77,7 +77,7 @@ def test_trim_gives_deviations_and_no_verdict(loaded: LoadedPlant, write: Write,
 def test_a_changed_description_does_not_touch_the_verdict(
     folder: Path, filed_test: FiledRecord, model: SystemModel
 ) -> None:
-    """Twice the guaranteed capacity afterwards: the filed verdict stands, the recomputation says otherwise beside it."""
+    """Twice the guarantee afterwards: the filed verdict stands, the recomputation says otherwise beside it."""
     before = filed_test.path.read_bytes()
     plant = folder / "plant.yaml"
     plant.write_text(plant.read_text(encoding="utf-8").replace("value: 3.0 kW", "value: 6.0 kW"), encoding="utf-8")
@@ -120,7 +120,7 @@ def test_another_property_library_does_not_touch_the_verdict(
 
     original = Refrigerant.vapour
 
-    def other(self: Refrigerant, T: float, p: float) -> Any:  # noqa: N803  # the signature of the original
+    def other(self: Refrigerant, T: float, p: float) -> Any:
         state = original(self, T, p)
         return dataclasses.replace(state, h=state.h * 1.1)
 
