@@ -262,17 +262,30 @@ def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[st
         "t_in": readings[inlet],
         "t_out": readings[outlet],
         "flow": readings[flow],
-        "humidity": humidity or Measured("relative humidity", medium.relative_humidity or 0.5),
+        "humidity": humidity or _humidity_not_read(medium, side),
         "method": _relative("air side", "method", "uneven air over the coil"),
     }
     sign = 1.0 if side == "source" else -1.0
 
     def heat(t_in: float, t_out: float, flow: float, humidity: float, method: float) -> float:
+        # A humidity of 98 % with its doubt goes beyond saturation in the difference that gives the sensitivity.
         air = moist_air(t_in, barometric, relative_humidity=min(max(humidity, 0.0), 1.0))
         return sign * method * flow * air.density * air.cp * (t_in - t_out)
 
     key = "cooling_capacity" if side == "source" else "heating_capacity"
     return RouteResult("air side", explained(propagate(key, heat, inputs), "air_side_capacity", inputs))
+
+
+def _humidity_not_read(medium: Medium, side: Side) -> Measured:
+    """Humidity as the description states it, or anything: it moves the heat by about a hundredth."""
+    key = f"heat_{side}_relative_humidity"
+    stated = medium.relative_humidity
+    entry = library()["air side"]["humidity_not_read" if stated is None else "humidity_stated"]
+    component = Component(
+        "humidity not read", float(entry["standard"]), "rectangular", source=entry["source"], mark=entry["mark"],
+        cause=f"{key}: not read", of=key, remedy=entry["remedy"],
+    )  # fmt: skip
+    return Measured(key, float(entry["value"]) if stated is None else stated, Budget((component,)))
 
 
 def _refuse_wet_coil(readings: Mapping[str, Measured], humidity: Measured | None, barometric: float) -> None:

@@ -15,9 +15,9 @@ from typing import Any
 
 from commission.acceptance.decision import Rule, decide, fixed, significant
 
-_ArgumentsOfDecide = tuple[float, float, float | None, float | None, Rule, float, float | None]
+ArgumentsOfDecide = tuple[float, float, float | None, float | None, Rule, float, float | None]
 
-DECIDE: tuple[tuple[str, _ArgumentsOfDecide], ...] = (
+DECIDE: tuple[tuple[str, ArgumentsOfDecide], ...] = (
     ("simple, inside", (3400.0, 90.0, 3135.0, None, "simple", 0.95, None)),
     ("simple, on the limit", (3135.0, 90.0, 3135.0, None, "simple", 0.95, None)),
     ("simple, on the limit but for arithmetic", (0.1 + 0.2, 0.01, None, 0.3, "simple", 0.95, None)),
@@ -61,7 +61,7 @@ PAGE_CHECKS = ("simple, on the limit", "simple, test not capable, near the limit
 def vectors() -> dict[str, Any]:
     """All vectors with their answers, as plain data."""
     return {
-        "decide": [{"name": n, "arguments": list(a), "answer": _answer(a)} for n, a in DECIDE],
+        "decide": [{"name": n, "arguments": list(a), "answer": answer_of(a)} for n, a in DECIDE],
         "significant": [{"name": n, "arguments": list(a), "answer": significant(*a)} for n, a in SIGNIFICANT],
         "fixed": [
             {"name": f"fixed {value!r} {digits}", "arguments": [value, digits], "answer": fixed(value, digits)}
@@ -87,7 +87,8 @@ def files() -> Mapping[str, str]:
     }
 
 
-def _answer(arguments: _ArgumentsOfDecide) -> dict[str, Any]:
+def answer_of(arguments: ArgumentsOfDecide) -> dict[str, Any]:
+    """The answer of the Python side, in the words of the script."""
     d = decide(*arguments)
     return {
         "outcome": d.outcome,

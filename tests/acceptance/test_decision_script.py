@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import random
 import shutil
 import subprocess
 from pathlib import Path
@@ -10,8 +11,8 @@ from typing import Any
 
 import pytest
 
-from commission.acceptance.decision import decide, fixed, significant
-from commission.acceptance.vectors import files, vectors
+from commission.acceptance.decision import Rule, decide, fixed, significant
+from commission.acceptance.vectors import answer_of, files, vectors
 
 ROOT = Path(__file__).resolve().parents[2]
 SCRIPT = ROOT / "site_templates" / "scripts" / "decision.js"
@@ -79,6 +80,27 @@ def test_script_answers_the_committed_vectors() -> None:
     """The script gives each committed answer, and passes the check that a page makes at start."""
     found = in_node({"vectors": json.loads(VECTORS.read_text(encoding="utf-8")), "wrong": []})
     assert found == {"failed": [], "page": [], "errors": []}
+
+
+@node
+def test_script_and_package_agree_on_random_cases() -> None:
+    """On 2000 seeded cases, many of them near a limit, script and package give the same answer."""
+    random.seed(106)
+    cases = []
+    for n in range(2000):
+        value, u = random.uniform(-50.0, 50.0), random.choice([0.0, random.uniform(0.01, 5.0)])
+        near = (
+            value + random.choice([0.0, 1.0, -1.0, 1.6449, -1.6449]) * u + random.choice([0.0, random.gauss(0.0, 2.0)])
+        )
+        width = random.uniform(0.1, 20.0)
+        lower, upper = random.choice([(near, None), (None, near), (near, near + width), (near - width, near)])
+        largest = random.choice([None, random.uniform(0.1, 10.0)])
+        rule: Rule = random.choice(["simple", "guarded"])
+        arguments = (value, u, lower, upper, rule, random.choice([0.9, 0.95, 0.99]), largest)
+        cases.append({"name": str(n), "arguments": list(arguments), "answer": answer_of(arguments)})
+    assert {c["answer"]["outcome"] for c in cases} == {"conforming", "not conforming", "undecided"}
+    found = in_node({"vectors": {"decide": cases, "significant": [], "fixed": []}, "wrong": []})
+    assert found["failed"] == []
 
 
 @node
