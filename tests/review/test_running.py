@@ -164,7 +164,7 @@ def test_frost_protection(facts: Facts, setting: str, severity: str | None) -> N
 
 @pytest.mark.parametrize(("defrost", "coldest", "fires"), [(None, -5, True), (None, 2, False), ({}, -5, False)])
 def test_frost_without_a_defrost(facts: Facts, defrost: Any, coldest: float, fires: bool) -> None:
-    """A coil at -5 °C frosts; without a defrost that written that is worth a note."""
+    """A coil at -5 °C frosts: a note where no defrost is written."""
     found = list(
         freezing.coil_can_frost(facts({"evaporator": {"defrost": defrost}}, coldest={"design": coldest + CELSIUS}))
     )
