@@ -58,7 +58,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
         book.add_file(path)
 
     progress("reviewing")
-    findings = review(plant.loaded)
+    findings = review(plant.loaded, models={d.id: d.model for d in plant.systems if d.model is not None})
     standings = {d.id: _standing(d, findings, archive) for d in plant.systems}
     counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
     book.add(plant_pages.at_a_glance(plant, standings, sum(i.state == "open" for i in archive.items), counts))
@@ -75,6 +75,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
         if page.sheet is not None:
             book.add(page.sheet)
     book.add(plant_pages.method_page())
+    book.add(plant_pages.reference_page())
     book.add(plant_pages.carry_page())
     book.add(plant_pages.search_page())
     return Contents(book, (*documents, *pages, *archive.files), texts, findings, (*left_documents, *left_pages))

@@ -10,6 +10,7 @@ from commission.description import Assumption, LoadedPlant, System
 from commission.errors import CommissionError, NotCalculatedError
 from commission.manual.book import slugs
 from commission.manual.grid import Grid, make_grid
+from commission.manual.remembering import remembering
 from commission.quantities import Display
 
 if TYPE_CHECKING:
@@ -78,7 +79,7 @@ def _system(loaded: LoadedPlant, identity: str, slug: str, progress: Callable[[s
     progress(f"calculating {identity}")
     system = loaded.system(identity)
     try:
-        model = fit(loaded, identity)
+        model = remembering(fit(loaded, identity))
         rated = model.predict()
     except CommissionError as error:
         return SystemData(identity, slug, system, None, _reason(error), None, loaded.assumptions(identity), None, {})

@@ -167,6 +167,18 @@ def documents_page(plant: PlantData, links: dict[str, tuple[DocumentLink, ...]],
     )
 
 
+def reference_page() -> Sheet:
+    """Every key of the description, generated from where each field is declared."""
+    from commission.description import key_reference
+
+    groups: dict[str, list[object]] = {}
+    for row in key_reference():
+        groups.setdefault(row.path.split(".")[0].split("[")[0], []).append(row)
+    return Sheet(
+        "description-keys", "Keys of the description", "reference", "reference.html", {"groups": groups}, short="Keys of the description"
+    )
+
+
 def carry_page() -> Sheet:
     """How to carry the manual, honest about tablets."""
     return Sheet("how-to-carry-this-manual", "How to carry this manual", "reference", "carry.html")

@@ -82,7 +82,7 @@ def _over_weather(plant: PlantData, data: SystemData) -> list[tuple[str, list[tu
     for point in data.grid.points:
         if point.prediction is None:
             continue
-        found = capability(plant.loaded, data.model, {data.grid.key: point.temperature})
+        found = capability(plant.loaded, data.model, {**data.grid.fixed, data.grid.key: point.temperature})
         head = plant.display.text(point.temperature, Kind.TEMPERATURE, 0)
         rows.append((head, [(label_of(g.terms.quantity), g.decided) for g in found.guarantees]))
     return rows

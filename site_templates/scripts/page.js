@@ -91,6 +91,25 @@
     target.scrollIntoView();
   }
 
+  function markOverdue() {
+    var now = new Date();
+    var today = [now.getFullYear(), String(now.getMonth() + 1).padStart(2, "0"), String(now.getDate()).padStart(2, "0")].join("-");
+    Array.prototype.forEach.call(document.querySelectorAll("[data-until]"), function (place) {
+      if (place.getAttribute("data-until") >= today) {
+        return;
+      }
+      if (place.hidden) {
+        place.hidden = false;
+        return;
+      }
+      var word = document.createElement("strong");
+      word.className = "say-stop";
+      word.textContent = " overdue today";
+      place.appendChild(word);
+    });
+  }
+
+  markOverdue();
   setUpTheme();
   setUpPages();
   setUpRows();

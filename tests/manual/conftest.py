@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING
 import pytest
 
 from commission.manual import BuildResult, build
+from commission.manual.remembering import remembering
 from tests.manual.plants import file_visits, write_hostile_plant
 
 if TYPE_CHECKING:
@@ -20,7 +21,7 @@ if TYPE_CHECKING:
 
 @pytest.fixture(scope="session", autouse=True)
 def _one_fit_for_each_description() -> Iterator[None]:
-    """Fitting is slow and gives the same each time: the tests fit each description once."""
+    """Fitting is slow and gives the same each time: the tests fit each description once, and remember predictions."""
     import commission.prediction
 
     fit = commission.prediction.fit
@@ -29,7 +30,7 @@ def _one_fit_for_each_description() -> Iterator[None]:
     def once(loaded: object, system: str) -> object:
         key = (loaded.digest, system)  # type: ignore[attr-defined]  # a LoadedPlant
         if key not in fitted:
-            fitted[key] = fit(loaded, system)  # type: ignore[arg-type]  # a LoadedPlant
+            fitted[key] = remembering(fit(loaded, system))  # type: ignore[arg-type]  # a LoadedPlant
         return fitted[key]
 
     with pytest.MonkeyPatch.context() as patch:

@@ -111,7 +111,7 @@ spaces:
   room: {{name: {_quoted(f"Room {IMAGE}")}, floor_area: 24 m2, height: 2.8 m, occupancy: authorised persons only}}
   yard: {{name: {_quoted(f"Yard {SCRIPT}")}, outdoors: yes}}
 instruments:
-  {_quoted(f"gauge {SCRIPT}")}: {{measures: pressure, from: -1 bar g, to: 10 bar g, accuracy: {{of_span: 0.25 %}},
+  low gauge: {{measures: pressure, from: -1 bar g, to: 10 bar g, accuracy: {{of_span: 0.25 %}},
     serial: {_quoted(IMAGE)}, calibrated_until: 2027-03-31}}
 systems:
   good:
