@@ -51,6 +51,14 @@ def _levels(facts: Facts) -> str | None:
     return "; ".join(shown) or None
 
 
+def _other_season(facts: Facts) -> str:
+    from commission.checklists.words import outdoor_conditions
+
+    if outdoor_conditions(facts.loaded, facts.system_id):
+        return "at least 15 K colder or warmer outdoors than the test"
+    return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
+
+
 def _highest_discharge(facts: Facts) -> str | None:
     components = facts.substance.components
     if components == ("R-744",):
@@ -228,6 +236,7 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.charge_limits": lambda f, _: _charge_limits(f),
         "words.owner": _person("owner"),
         "words.contractor": _person("contractor"),
+        "words.other_season": lambda f, _: _other_season(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),
         "only.flammable": lambda f, _: "" if f.substance.flammable else None,

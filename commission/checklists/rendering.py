@@ -52,6 +52,8 @@ def show(value: float, kind: Kind, display: Display) -> str:
         return f"{value:.0f} s"
     if kind is Kind.NUMBER:
         return f"{value:g}"
+    if kind is Kind.VOLUME_FLOW and display.convert(value, kind) < 10:
+        return display.text(value, kind, 2)
     if kind is Kind.DENSITY and value < 1 and display.system == "metric":
         return f"{value * 1000:.3g} g/m³"
     return display.text(value, kind)
@@ -117,7 +119,8 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
     text = _range_text(value, low, high, kind, facts.display)
     if within == "band" and low is not None and "expected." in _text_of(item):
         text += f", expected at {facts.lookup('words.condition').content}"
-    return Target(f"{text}; {says}" if says else text, value, low, high, kind, None, explained)
+    shown = "; ".join(part for part in (text, says) if part)
+    return Target(shown, value, low, high, kind, None, explained)
 
 
 def _text_of(item: CheckedItem) -> str:
@@ -169,16 +172,20 @@ def _margin_kind(kind: Kind) -> Kind:
 
 
 def _range_text(value: float | None, low: float | None, high: float | None, kind: Kind, display: Display) -> str:
+    """Value and bounds in words; a band that does not show at the digits of the display is left out."""
+
     def shown(x: float) -> str:
         return show(x, kind, display)
 
-    if value is not None and low is not None and high is not None:
-        bare = display.number(low, kind) if shown(low) == display.text(low, kind) else shown(low)
-        return f"{shown(value)}, within {bare} to {shown(high)}"
+    if low is not None and high is not None:
+        first, last = shown(low), shown(high)
+        unit = last[len(last.split(" ")[0]) :]
+        span = f"{first.removesuffix(unit) if unit else first} to {last}"
+        if value is None:
+            return span
+        return shown(value) if first == last else f"{shown(value)}, within {span}"
     if value is not None:
         return shown(value)
-    if low is not None and high is not None:
-        return f"{shown(low)} to {shown(high)}"
     if low is not None:
         return f"at least {shown(low)}"
     return f"at most {shown(high)}" if high is not None else ""

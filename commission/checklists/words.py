@@ -79,6 +79,9 @@ def predictions(
     climate = loaded.plant.plant.climate
     wanted: dict[str, Mapping[str, float] | str | None] = {"expected": conditions}
     for word, temperature in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
+        if word == "hottest" and loaded.system(system_id).duty == "space_heating":
+            wanted[word] = "nothing is heated on the hottest day"
+            continue
         wanted[word] = _on_day(model, outdoor_conditions(loaded, system_id), word, temperature)
     for word, at in wanted.items():
         if model is None:

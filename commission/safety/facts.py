@@ -20,7 +20,7 @@ MARKS: Mapping[str, str] = MappingProxyType(
         "M": "from memory, check the edition in force",
         "M-low": "from memory and not sure: check the document before it decides anything",
         "practice": "common practice, no source",
-        "stated": "as stated in the description",
+        "stated": "as the plant's own documents state it",
     }
 )
 """What each mark means, in the words a reader sees."""

@@ -52,6 +52,8 @@ def pressure_test_figures(loaded: LoadedPlant, system_id: str, out: Collector) -
     high = next((s for s in stamped if s.side == "high"), None)
     if high is None:
         out.refuse("the allowable pressure of the high side is not stated", keys[1], keys[3])
+    elif high.absolute <= lowest.absolute:
+        out.refuse("both sides have the same allowable pressure: the joined test proves both", keys[1], keys[3])
     else:
         _test_pair(out, high, loaded.barometric_pressure, "_high_side", "only with the low side shut off")
     _nitrogen_figure(out, lowest)
