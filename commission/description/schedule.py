@@ -20,7 +20,7 @@ from commission.description.looked import Looked
 from commission.description.meaning import problems_of_meaning
 from commission.description.model import Plant
 from commission.description.plant import site_pressure
-from commission.description.positions import DescriptionError, KeyPath, Mark, Positions
+from commission.description.positions import DescriptionError, KeyPath, Mark, Positions, dotted
 from commission.description.reading import read_yaml
 from commission.description.reference import SCHEMA_FILE
 from commission.description.schedule_text import description_text
@@ -127,14 +127,11 @@ def from_schedule(schedule: Path | str, folder: Path | str) -> tuple[Path, ...]:
 
 def _with_heading(problem: Problem, sheet: _Sheet) -> Problem:
     """In a schedule a person looks for the heading of the column, not for a key path."""
-    heading = sheet.headings.get((problem.line or 0, problem.column or 0))
-    if " is missing in " in problem.message:
+    if problem.path not in {"", *map(dotted, sheet.positions)}:  # a key that is missing has no cell
         word = main_headings().get(problem.path.rpartition(".")[2])
-        return (
-            replace(problem, allowed=f"a column headed {word}; {problem.allowed or ''}".rstrip("; "))
-            if word
-            else problem
-        )
+        wanted = f"a column headed {word}" if word else None
+        return replace(problem, allowed="; ".join(filter(None, (wanted, problem.allowed))) or None)
+    heading = sheet.headings.get((problem.line or 0, problem.column or 0))
     return replace(problem, path=f"column {shorten(heading, 60)}") if heading else problem
 
 
