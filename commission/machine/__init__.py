@@ -1,13 +1,16 @@
 """Compressor, exchangers, cycle, balance: plain SI dataclasses that know nothing of a description."""
 
+from commission.machine.circuit import Parts, SuctionLine
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
+from commission.machine.gas_cooler import GasCoolerPressure, best_pressure, liao_best_pressure
 from commission.machine.head_pressure import HeadPressure
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
-from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage, SuctionLine
+from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
+from commission.machine.transcritical import Transcritical
 from commission.machine.wet_air import LeavingAir, coil_conductance, leaving_air
 
 __all__ = [
@@ -19,18 +22,22 @@ __all__ = [
     "Compressor",
     "EfficiencyShape",
     "Exchanger",
+    "GasCoolerPressure",
     "HeadPressure",
     "LeavingAir",
     "Media",
     "NoSolutionError",
     "OperatingPoint",
+    "Parts",
     "PolynomialCompressor",
     "SingleStage",
     "Solution",
     "StatePoint",
     "Stream",
     "SuctionLine",
+    "Transcritical",
     "air_stream",
+    "best_pressure",
     "carnot_cooling",
     "coil_conductance",
     "conductance_for",
@@ -38,6 +45,7 @@ __all__ = [
     "entropic_mean",
     "in_fahrenheit",
     "leaving_air",
+    "liao_best_pressure",
     "liquid_stream",
     "solve",
     "ten_coefficients",

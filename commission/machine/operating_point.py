@@ -39,7 +39,8 @@ class Balance:
     """The balance of all components at one condition.
 
     Temperatures in K, pressures in Pa absolute, heat and power in W. `evaporating_temperature` and
-    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet; `source_drive` and
+    `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet, the
+    latter None above the critical point; `source_drive` and
     `sink_drive` the refrigerant temperatures that drive the exchangers, for blends means along them. `share` is the
     manipulated share of the head-pressure control, `sink_fan_share` and `sink_flow_share` its shares of fan power and
     flow. `jacobian` and `unknowns` start a neighbouring solution.
@@ -47,7 +48,7 @@ class Balance:
 
     regime: str
     evaporating_temperature: float
-    condensing_temperature: float
+    condensing_temperature: float | None
     compression: Compression
     heat_from_source: float
     heat_to_sink: float
@@ -76,7 +77,7 @@ class OperatingPoint:
     liquid_temperature: float
     superheat: float
     compressor_superheat: float
-    subcooling: float
+    subcooling: float | None
     valve_outlet_temperature: float
     line_gain: float
     states: tuple[StatePoint, ...]

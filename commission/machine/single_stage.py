@@ -12,13 +12,12 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
-from commission.machine.compressor import Compression, Compressor
-from commission.machine.exchanger import Exchanger
+from commission.machine.circuit import Circuit, Parts, SuctionLine
+from commission.machine.compressor import Compression
 from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
-from commission.machine.polynomial import PolynomialCompressor
 from commission.machine.solver import Solution, solve
-from commission.properties import Refrigerant, State
+from commission.properties import State
 
 FREE = "free condensing"
 HELD = "head pressure held"
@@ -26,31 +25,9 @@ LOWEST = "head pressure below its setting, control at its lowest"
 
 
 @dataclass(frozen=True, slots=True)
-class SuctionLine:
-    """Between evaporator outlet and compressor: pressure loss in kelvin of dew temperature, and heat from around.
+class SingleStage(Parts):
+    """One compressor, evaporator and condenser; with `head_pressure` the condensing temperature may be held."""
 
-    The gas is warmed by `heating_share` of the difference between the surroundings and the evaporator outlet;
-    `warming` is a further rise in K that does not depend on them. The heat is taken after the evaporator, so
-    it is no use to the source, and it raises the suction temperature that is read.
-    """
-
-    pressure_loss: float = 0.0
-    heating_share: float = 0.0
-    warming: float = 0.0
-
-
-@dataclass(frozen=True, slots=True)
-class SingleStage:
-    """All parameters of the machine; temperature differences in K. Faults are other values of these parameters."""
-
-    refrigerant: Refrigerant
-    compressor: Compressor | PolynomialCompressor
-    evaporator: Exchanger
-    condenser: Exchanger
-    superheat: float
-    subcooling: float
-    suction_line: SuctionLine = SuctionLine()
-    discharge_line_loss: float = 0.0
     head_pressure: HeadPressure | None = None
 
     def balance(self, media: Media, start: Balance | None = None) -> Balance:
@@ -112,7 +89,7 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
         if held is not None:
             return held
     free = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
-    if free.condensing_temperature >= control.hold:
+    if circuit.second(free) >= control.hold:
         return free
     held = circuit.held(control, None)
     if held is None:
@@ -122,29 +99,30 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     return held
 
 
-class _Circuit:
-    """Refrigerant side of one machine at one condition; keeps the states that depend on one unknown alone."""
+class _Circuit(Circuit):
+    """Circuit with a condenser; the second unknown is its condensing temperature (dew, K)."""
+
+    machine: SingleStage
 
     def __init__(self, machine: SingleStage, media: Media) -> None:
-        self.machine = machine
-        self.media = media
-        self._low: dict[float, tuple[State, State]] = {}
+        super().__init__(machine, media)
         self._high: dict[float, tuple[float, State]] = {}
 
-    def low_side(self, evaporating: float) -> tuple[State, State]:
-        """States at the evaporator outlet and at the suction port."""
-        if evaporating not in self._low:
-            m, fluid = self.machine, self.machine.refrigerant
-            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew(evaporating).p)
-            line = m.suction_line
-            suction = outlet
-            if line.pressure_loss or line.heating_share or line.warming:
-                warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
-                suction = fluid.vapour(outlet.T + warmer, fluid.dew(evaporating - line.pressure_loss).p)
-            self._low[evaporating] = (outlet, suction)
-        return self._low[evaporating]
+    def second(self, balance: Balance) -> float:
+        """The condensing temperature."""
+        assert balance.condensing_temperature is not None
+        return balance.condensing_temperature
 
-    def high_side(self, condensing: float) -> tuple[float, State]:
+    def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
+        """Dew and bubble point of the condenser."""
+        fluid, condensing = self.machine.refrigerant, self.second(balance)
+        dew, bubble = fluid.dew(condensing), fluid.bubble(self._bubble_temperature(condensing))
+        return (
+            StatePoint("4", "condenser, dew point", dew.p, dew.h, dew.T, dew.s),
+            StatePoint("5", "condenser, bubble point", bubble.p, bubble.h, bubble.T, bubble.s),
+        )
+
+    def high_side(self, evaporating: float, condensing: float) -> tuple[float, State]:  # same for all
         """Pressure at the discharge port and state of the liquid before the valve."""
         if condensing not in self._high:
             m, fluid = self.machine, self.machine.refrigerant
@@ -153,23 +131,6 @@ class _Circuit:
             discharge = fluid.dew(condensing + m.discharge_line_loss).p if m.discharge_line_loss else pressure
             self._high[condensing] = (discharge, liquid)
         return self._high[condensing]
-
-    def cycle(self, evaporating: float, condensing: float) -> tuple[Compression, float, float]:
-        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
-        outlet, suction = self.low_side(evaporating)
-        discharge, liquid = self.high_side(condensing)
-        compressor, share = self.machine.compressor, self.media.speed_share
-        compression = compressor.compress(self.machine.refrigerant, suction, discharge, share)
-        source = compression.flow * (outlet.h - liquid.h)
-        sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
-        return compression, source, sink
-
-    def source_drive(self, evaporating: float, condensing: float) -> float:
-        """Temperature that drives the evaporator: for blends the mean of its inlet and its dew end."""
-        fluid = self.machine.refrigerant
-        if not fluid.is_blend:
-            return evaporating
-        return fluid.mean_evaporating_temperature(fluid.dew(evaporating).p, self.high_side(condensing)[1].h)
 
     def sink_drive(self, condensing: float) -> float:
         """Temperature that drives the condenser: for blends the mean of dew and bubble point."""
@@ -183,11 +144,6 @@ class _Circuit:
         fluid = self.machine.refrigerant
         return fluid.bubble_temperature(fluid.dew(condensing).p) if fluid.is_blend else condensing
 
-    def _source_gap(self, evaporating: float, condensing: float, taken: float) -> float:
-        source, exchanger = self.media.source, self.machine.evaporator
-        given = exchanger.heat_from(source, self.source_drive(evaporating, condensing))
-        return (given - taken) / (exchanger.heat_per_kelvin(source) * 10.0)
-
     def _sink_gap(self, condensing: float, given: float, share: float) -> float:
         m, sink = self.machine, self.media.sink
         by = m.head_pressure.by if m.head_pressure else None
@@ -200,7 +156,7 @@ class _Circuit:
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             _, taken, given = self.cycle(x[0], x[1])
-            return self._source_gap(x[0], x[1], taken), self._sink_gap(x[1], given, share)
+            return self.source_gap(x[0], x[1], taken), self._sink_gap(x[1], given, share)
 
         near = start is not None and len(start.unknowns) == 2
         guess = start.unknowns if near and start is not None else self.guess()
@@ -212,7 +168,7 @@ class _Circuit:
         condensing = control.hold
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            return (self._source_gap(x[0], condensing, self.cycle(x[0], condensing)[1]),)
+            return (self.source_gap(x[0], condensing, self.cycle(x[0], condensing)[1]),)
 
         near = start is not None and len(start.unknowns) == 1
         guess = start.unknowns if near and start is not None else self.guess()[:1]
@@ -269,38 +225,4 @@ class _Circuit:
             evaluations=solution.evaluations,
             unknowns=solution.x,
             jacobian=solution.jacobian,
-        )
-
-    def point(self, balance: Balance) -> OperatingPoint:
-        """All states of a balance."""
-        fluid = self.machine.refrigerant
-        condensing = balance.condensing_temperature
-        outlet, suction = self.low_side(balance.evaporating_temperature)
-        pressure, liquid = self.high_side(condensing)
-        discharge = fluid.vapour_from_enthalpy(pressure, balance.compression.discharge_enthalpy)
-        throttled = fluid.throttled(outlet.p, liquid.h)
-        dew, bubble = fluid.dew(condensing), fluid.bubble(self._bubble_temperature(condensing))
-        states = (
-            StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),
-            StatePoint("2", "compressor suction", suction.p, suction.h, suction.T, suction.s),
-            StatePoint("3", "compressor discharge", discharge.p, discharge.h, discharge.T, discharge.s),
-            StatePoint("4", "condenser, dew point", dew.p, dew.h, dew.T, dew.s),
-            StatePoint("5", "condenser, bubble point", bubble.p, bubble.h, bubble.T, bubble.s),
-            StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
-            StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
-        )
-        return OperatingPoint(
-            balance=balance,
-            suction_pressure=suction.p,
-            discharge_pressure=pressure,
-            suction_temperature=suction.T,
-            discharge_temperature=discharge.T,
-            liquid_temperature=liquid.T,
-            superheat=self.machine.superheat,
-            compressor_superheat=suction.T - balance.evaporating_temperature + self.machine.suction_line.pressure_loss,
-            subcooling=self.machine.subcooling,
-            valve_outlet_temperature=throttled.T,
-            line_gain=balance.compression.flow * (suction.h - outlet.h),
-            states=states,
-            warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
         )

@@ -27,7 +27,6 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     fan = plan.fans.source if facts.source_liquid is None else 0.0
     values = {
         "evaporating_temperature": balance.evaporating_temperature,
-        "condensing_temperature": balance.condensing_temperature,
         "suction_pressure": point.suction_pressure,
         "discharge_pressure": point.discharge_pressure,
         "suction_temperature": point.suction_temperature,
@@ -35,9 +34,7 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "liquid_temperature": point.liquid_temperature,
         "superheat": point.superheat,
         "compressor_superheat": point.compressor_superheat,
-        "subcooling": point.subcooling,
         "evaporator_temperature_difference": balance.source_inlet_temperature - balance.evaporating_temperature,
-        "condenser_temperature_difference": balance.condensing_temperature - balance.sink_inlet_temperature,
         "pressure_ratio": balance.compression.pressure_ratio,
         "refrigerant_flow": balance.compression.flow,
         "cooling_capacity": balance.heat_from_source,
@@ -50,11 +47,25 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "heating_cop": balance.heat_to_sink / power,
     }
     found = Found(values, {})
+    _condensing(point, found)
     _add(found, "current", lambda: _current(facts, plan, power))
     _media(plan, media, balance, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
+
+
+def _condensing(point: OperatingPoint, found: Found) -> None:
+    """What only a condenser has; a gas cooler above the critical point condenses nothing."""
+    condensing = point.balance.condensing_temperature
+    if condensing is None or point.subcooling is None:
+        reason = "the high side is above the critical point: nothing condenses"
+        for key in ("condensing_temperature", "condenser_temperature_difference", "subcooling"):
+            found.reasons[key] = reason
+        return
+    found.values["condensing_temperature"] = condensing
+    found.values["condenser_temperature_difference"] = condensing - point.balance.sink_inlet_temperature
+    found.values["subcooling"] = point.subcooling
 
 
 def _add(found: Found, key: str, calculate: Callable[[], float]) -> None:

@@ -265,9 +265,10 @@ def _fitted(facts: Facts, found: Fit) -> dict[str, Input]:
         ("swept flow times volumetric level", found.levels.swept_flow, Kind.VOLUME_FLOW),
         ("conductance of the condenser", machine.condenser.conductance, Kind.CONDUCTANCE),
         ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
-        ("condensing temperature at the rated point", balance.condensing_temperature, Kind.TEMPERATURE),
         ("evaporating temperature at the rated point", balance.evaporating_temperature, Kind.TEMPERATURE),
     ]
+    if balance.condensing_temperature is not None:
+        values.append(("condensing temperature at the rated point", balance.condensing_temperature, Kind.TEMPERATURE))
     volumetric = point.compression.volumetric_efficiency
     if facts.system.compressor.displacement is not None and volumetric is not None:
         values.insert(0, ("volumetric efficiency at the rated point", volumetric, Kind.RATIO))

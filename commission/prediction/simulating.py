@@ -75,8 +75,14 @@ def observed(seen: Seen, of: str) -> float:
     balance = seen.balance
     if balance is None:
         raise KeyError(of)
-    if of in ("evaporating_temperature", "condensing_temperature"):
-        return balance.evaporating_temperature if of.startswith("evap") else balance.condensing_temperature
+    if of == "evaporating_temperature":
+        return balance.evaporating_temperature
+    if of == "condensing_temperature":
+        if balance.condensing_temperature is None:
+            raise NotCalculatedError(
+                "a condensing temperature is stated, but the high side is above the critical point"
+            )
+        return balance.condensing_temperature
     if of == "source_minus_evaporating":
         return balance.source_inlet_temperature - balance.source_drive
     if of == "condensing_minus_sink_inlet":

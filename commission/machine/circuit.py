@@ -1,0 +1,131 @@
+"""What all arrangements with one compressor and one evaporator share: parameters, low side, states. SI units."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from commission.machine.compressor import Compression, Compressor
+from commission.machine.exchanger import Exchanger
+from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
+from commission.machine.polynomial import PolynomialCompressor
+from commission.properties import Refrigerant, State
+
+
+@dataclass(frozen=True, slots=True)
+class SuctionLine:
+    """Between evaporator outlet and compressor: pressure loss in kelvin of dew temperature, and heat from around.
+
+    The gas is warmed by `heating_share` of the difference between the surroundings and the evaporator outlet; `warming`
+    is a further rise in K that does not depend on them. The heat is taken after the evaporator, so it is no use to the
+    source, and it raises the suction temperature that is read.
+    """
+
+    pressure_loss: float = 0.0
+    heating_share: float = 0.0
+    warming: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Parts:
+    """The parameters of a machine; temperature differences in K. A fault is another value of one of them."""
+
+    refrigerant: Refrigerant
+    compressor: Compressor | PolynomialCompressor
+    evaporator: Exchanger
+    condenser: Exchanger
+    superheat: float
+    subcooling: float
+    suction_line: SuctionLine = SuctionLine()
+    discharge_line_loss: float = 0.0
+
+
+class Circuit:
+    """Refrigerant side of one machine at one condition; keeps the states that depend on one unknown alone.
+
+    The second unknown is the condensing temperature of a condenser, or the outlet temperature of a gas cooler.
+    """
+
+    def __init__(self, machine: Parts, media: Media) -> None:
+        self.machine = machine
+        self.media = media
+        self._low: dict[float, tuple[State, State]] = {}
+
+    def low_side(self, evaporating: float) -> tuple[State, State]:
+        """States at the evaporator outlet and at the suction port."""
+        if evaporating not in self._low:
+            m, fluid = self.machine, self.machine.refrigerant
+            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew(evaporating).p)
+            line = m.suction_line
+            suction = outlet
+            if line.pressure_loss or line.heating_share or line.warming:
+                warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
+                suction = fluid.vapour(outlet.T + warmer, fluid.dew(evaporating - line.pressure_loss).p)
+            self._low[evaporating] = (outlet, suction)
+        return self._low[evaporating]
+
+    def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
+        """Pressure at the discharge port and state before the valve."""
+        raise NotImplementedError
+
+    def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
+        """States between compressor and valve, for tables and the diagram."""
+        raise NotImplementedError
+
+    def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
+        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
+        outlet, suction = self.low_side(evaporating)
+        discharge, liquid = self.high_side(evaporating, second)
+        compressor, share = self.machine.compressor, self.media.speed_share
+        compression = compressor.compress(self.machine.refrigerant, suction, discharge, share)
+        source = compression.flow * (outlet.h - liquid.h)
+        sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
+        return compression, source, sink
+
+    def source_drive(self, evaporating: float, second: float) -> float:
+        """Temperature that drives the evaporator: for blends the mean along it."""
+        fluid = self.machine.refrigerant
+        if not fluid.is_blend:
+            return evaporating
+        liquid = self.high_side(evaporating, second)[1]
+        return fluid.mean_evaporating_temperature(fluid.dew(evaporating).p, liquid.h)
+
+    def source_gap(self, evaporating: float, second: float, taken: float) -> float:
+        """Heat that the source gives less heat that the refrigerant takes, in tens of kelvin of the exchanger."""
+        source, exchanger = self.media.source, self.machine.evaporator
+        given = exchanger.heat_from(source, self.source_drive(evaporating, second))
+        return (given - taken) / (exchanger.heat_per_kelvin(source) * 10.0)
+
+    def second(self, balance: Balance) -> float:
+        """The second unknown of a balance."""
+        return balance.unknowns[-1]
+
+    def point(self, balance: Balance) -> OperatingPoint:
+        """All states of a balance."""
+        m, fluid = self.machine, self.machine.refrigerant
+        outlet, suction = self.low_side(balance.evaporating_temperature)
+        pressure, liquid = self.high_side(balance.evaporating_temperature, self.second(balance))
+        discharge = fluid.vapour_from_enthalpy(pressure, balance.compression.discharge_enthalpy)
+        throttled = fluid.throttled(outlet.p, liquid.h)
+        states = (
+            StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),
+            StatePoint("2", "compressor suction", suction.p, suction.h, suction.T, suction.s),
+            StatePoint("3", "compressor discharge", discharge.p, discharge.h, discharge.T, discharge.s),
+            *self.high_states(balance),
+            StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
+            StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
+        )
+        return OperatingPoint(
+            balance=balance,
+            suction_pressure=suction.p,
+            discharge_pressure=pressure,
+            suction_temperature=suction.T,
+            discharge_temperature=discharge.T,
+            liquid_temperature=liquid.T,
+            superheat=m.superheat,
+            compressor_superheat=suction.T - balance.evaporating_temperature + m.suction_line.pressure_loss,
+            subcooling=m.subcooling if balance.condensing_temperature is not None else None,
+            valve_outlet_temperature=throttled.T,
+            line_gain=balance.compression.flow * (suction.h - outlet.h),
+            states=states,
+            warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
+        )

@@ -1,0 +1,169 @@
+"""Transcritical carbon dioxide: one compressor, one evaporator, a gas cooler, an expansion that sets the high pressure.
+
+Unknowns: evaporating temperature (dew) and gas-cooler outlet temperature, never a condensing temperature. Residuals:
+the source exchanger as in the single stage, and the conductance of the gas cooler.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+from commission.errors import NotCalculatedError
+from commission.machine.circuit import Circuit, Parts, SuctionLine
+from commission.machine.compressor import Compression
+from commission.machine.gas_cooler import GasCoolerPressure, high_pressure, needed_conductance, outlet_state
+from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
+from commission.machine.solver import Solution, solve
+from commission.properties import State
+
+TRANSCRITICAL = "transcritical"
+SUBCRITICAL = "condensing below the critical point"
+FOLLOWS = GasCoolerPressure("follows the gas-cooler outlet")
+
+
+@dataclass(frozen=True, slots=True)
+class Transcritical(Parts):
+    """A machine whose `condenser` is a gas cooler; `subcooling` is not used, its outlet temperature is solved."""
+
+    pressure: GasCoolerPressure = FOLLOWS
+
+    def balance(self, media: Media, start: Balance | None = None) -> Balance:
+        """The balance at this condition; `start` is a neighbouring one that saves work.
+
+        Raises:
+            NotCalculatedError: no balance within the range of the property data; the message says why.
+        """
+        return GasCoolerCircuit(self, media).solve(start)
+
+    def operate(self, media: Media, start: Balance | None = None) -> OperatingPoint:
+        """The balance with all states.
+
+        Raises:
+            NotCalculatedError: as `balance`.
+        """
+        circuit = GasCoolerCircuit(self, media)
+        return circuit.point(circuit.solve(start))
+
+    def cycle(self, evaporating: float, outlet: float, media: Media) -> tuple[Compression, float, float]:
+        """Compression, heat taken up and heat given up by the refrigerant (W): no balance."""
+        return GasCoolerCircuit(self, media).cycle(evaporating, outlet)
+
+    def compressor_alone(
+        self, evaporating: float, condensing: float, superheat: float, subcooling: float, media: Media
+    ) -> tuple[Compression, float]:
+        """A compressor of a transcritical machine is not rated between two dew points.
+
+        Raises:
+            NotCalculatedError: always.
+        """
+        raise NotCalculatedError("a transcritical compressor has no table over condensing temperatures")
+
+    def condensing_unit(
+        self, evaporating: float, superheat: float, subcooling: float, media: Media, start: Balance | None = None
+    ) -> Balance:
+        """The gas-cooler side alone at a given dew point (K) and superheat (K) at its suction, as a unit is catalogued.
+
+        Raises:
+            NotCalculatedError: no balance within the range of the property data.
+        """
+        unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine())
+        return GasCoolerCircuit(unit, media).gas_cooler_side(evaporating, start)
+
+    def cycle_conductance(self, evaporating: float, outlet: float, media: Media) -> float:
+        """Conductance in W/K of the gas cooler that would bring this outlet (K) at a given dew point (K)."""
+        return GasCoolerCircuit(self, media).conductance(evaporating, outlet)
+
+
+class GasCoolerCircuit(Circuit):
+    """Refrigerant side of one transcritical machine; the second unknown is the gas-cooler outlet temperature."""
+
+    machine: Transcritical
+
+    def pressure(self, evaporating: float, outlet: float) -> float:
+        """High pressure in Pa."""
+        m = self.machine
+        return high_pressure(m.pressure, m.refrigerant, outlet, evaporating)
+
+    def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
+        """Pressure at the discharge port and state at the gas-cooler outlet."""
+        p = self.pressure(evaporating, second)
+        return p, outlet_state(self.machine.refrigerant, second, p)
+
+    def conductance(self, evaporating: float, outlet: float) -> float:
+        """Conductance in W/K that the gas cooler would need."""
+        compression, _, _ = self.cycle(evaporating, outlet)
+        p, end = self.high_side(evaporating, outlet)
+        sink = self.media.sink
+        return needed_conductance(
+            self.machine.refrigerant, p, compression.flow, compression.discharge_enthalpy, end, sink
+        )
+
+    def solve(self, start: Balance | None) -> Balance:
+        """Both unknowns, from a neighbouring balance or from the media."""
+        given = self.machine.condenser.conductance_at(self.media.sink.volume_flow)
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            _, taken, _ = self.cycle(x[0], x[1])
+            return self.source_gap(x[0], x[1], taken), math.log(self.conductance(x[0], x[1]) / given)
+
+        if start is not None:
+            try:
+                return self._outcome(solve(gaps, start.unknowns, jacobian=start.jacobian))
+            except NotCalculatedError:
+                pass  # the neighbour was too far off; start from the media instead
+        return self._outcome(solve(gaps, self.guess(), largest_step=5.0, evaluations=200))
+
+    def gas_cooler_side(self, evaporating: float, start: Balance | None) -> Balance:
+        """Only the gas cooler balances; the evaporating temperature is given."""
+        given = self.machine.condenser.conductance_at(self.media.sink.volume_flow)
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            return (math.log(self.conductance(evaporating, x[0]) / given),)
+
+        guess = start.unknowns[-1:] if start is not None else self.guess()[1:]
+        solution = solve(gaps, guess, largest_step=5.0, evaluations=200)
+        return self._outcome(replace(solution, x=(evaporating, solution.x[0])))
+
+    def guess(self) -> tuple[float, float]:
+        """Evaporating temperature and gas-cooler outlet (K) to start from."""
+        source, sink = self.media.source.temperature, self.media.sink
+        cold = sink.temperature - (30.0 if sink.by_outlet else 0.0)
+        return source - 8.0, max(cold, 278.15) + 4.0
+
+    def _outcome(self, solution: Solution) -> Balance:
+        evaporating, outlet = solution.x
+        compression, source, sink = self.cycle(evaporating, outlet)
+        p = self.pressure(evaporating, outlet)
+        critical = self.machine.refrigerant.p_critical
+        condensing = self.machine.refrigerant.dew_temperature(p) if p < 0.95 * critical else None
+        return Balance(
+            regime=TRANSCRITICAL if p > critical else SUBCRITICAL,
+            evaporating_temperature=evaporating,
+            condensing_temperature=condensing,
+            compression=compression,
+            heat_from_source=source,
+            heat_to_sink=sink,
+            source_drive=self.source_drive(evaporating, outlet),
+            sink_drive=outlet,
+            source_inlet_temperature=self.media.source.inlet(-source),
+            sink_inlet_temperature=self.media.sink.inlet(sink),
+            sink_outlet_temperature=self.media.sink.outlet(sink),
+            share=1.0,
+            sink_fan_share=1.0,
+            sink_flow_share=1.0,
+            evaluations=solution.evaluations,
+            unknowns=solution.x,
+            jacobian=solution.jacobian,
+        )
+
+    def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
+        """States between compressor and valve, for tables and the diagram."""
+        pressure, liquid = self.high_side(balance.evaporating_temperature, self.second(balance))
+        points = []
+        inlet = balance.compression.discharge_enthalpy
+        for n, label in ((1, "4"), (2, "5")):
+            state = self.machine.refrigerant.throttled(pressure, inlet + n / 3 * (liquid.h - inlet))
+            points.append(StatePoint(label, f"gas cooler, {n} of 3", state.p, state.h, state.T, state.s))
+        return tuple(points)
