@@ -273,7 +273,11 @@ def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[st
         return sign * method * flow * air.density * air.cp * (t_in - t_out)
 
     key = "cooling_capacity" if side == "source" else "heating_capacity"
-    return RouteResult("air side", explained(propagate(key, heat, inputs), "air_side_capacity", inputs))
+    more = {}
+    if humidity is None:
+        origin = "assumed: not read" if medium.relative_humidity is None else "plant.yaml"
+        more["humidity"] = Input(f"heat_{side}_relative_humidity", inputs["humidity"].value, Kind.RATIO, origin)
+    return RouteResult("air side", explained(propagate(key, heat, inputs), "air_side_capacity", inputs, **more))
 
 
 def _humidity_not_read(medium: Medium, side: Side) -> Measured:
@@ -285,7 +289,7 @@ def _humidity_not_read(medium: Medium, side: Side) -> Measured:
         "humidity not read", float(entry["standard"]), "rectangular", source=entry["source"], mark=entry["mark"],
         cause=f"{key}: not read", of=key, remedy=entry["remedy"],
     )  # fmt: skip
-    return Measured(key, float(entry["value"]) if stated is None else stated, Budget((component,)))
+    return Measured("relative humidity", float(entry["value"]) if stated is None else stated, Budget((component,)))
 
 
 def _refuse_wet_coil(readings: Mapping[str, Measured], humidity: Measured | None, barometric: float) -> None:

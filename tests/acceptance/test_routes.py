@@ -176,11 +176,14 @@ def test_air_side_of_a_condenser_by_hand() -> None:
 def test_humidity_that_was_not_read_hardly_counts() -> None:
     """Without a humidity any is possible; that is in the budget, and it is little."""
     readings = sure(heat_sink_inlet_temperature=293.15, heat_sink_outlet_temperature=299.15, heat_sink_flow=2600 / 3600)
-    found = air_side(Medium(medium="air"), "sink", AIR, readings).measured
-    (part,) = [c for c in found.budget.components if c.name == "humidity not read"]
-    assert 0.0 < abs(part.value) / found.value < 0.01
     stated = Medium.model_validate({"medium": "air", "relative_humidity": "60 %"})
-    assert air_side(stated, "sink", AIR, readings).measured.budget.standard < found.budget.standard
+    parts = []
+    for medium, origin in ((Medium(medium="air"), "assumed: not read"), (stated, "plant.yaml")):
+        found = air_side(medium, "sink", AIR, readings)
+        (part,) = [c for c in found.measured.budget.components if c.name == "humidity not read"]
+        parts.append(abs(part.value) / found.measured.value)
+        assert [i.origin for i in found.derived.explained.inputs if i.name == "heat_sink_relative_humidity"] == [origin]
+    assert 0.0 < parts[1] < parts[0] < 0.01
 
 
 def test_air_side_refuses_a_wet_coil() -> None:
