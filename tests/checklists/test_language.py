@@ -136,7 +136,7 @@ def test_a_division_by_zero_is_not_known() -> None:
         "\x00",
         "flammable and\nflammable; 1",
     ],
-)  # fmt: skip
+)
 def test_hostile_expressions_are_refused(text: str) -> None:
     """Nothing but names, literals, comparisons, logic and arithmetic is read; nothing is ever run."""
     with pytest.raises(ExpressionError):
@@ -189,21 +189,22 @@ def test_any_text_is_read_or_refused(text: str) -> None:
     """No text brings anything but a value type or an ExpressionError."""
     try:
         expression = read_expression(text, NAMES)
-    except ExpressionError as error:
-        assert error.problems[0].message
-    else:
-        assert expression.type in (*Kind, "yes/no", "text", "part")
+    except ExpressionError:
+        return
+    assert expression.type in (*Kind, "yes/no", "text", "part")
 
 
 @given(
     st.recursive(
-        st.sampled_from(["charge", "'1 kg'", "limit", "'2 bar g'", "duty", "'cold_storage'", "flammable", "unknown", "3", "none"]),
-        lambda inner: st.tuples(inner, st.sampled_from(["+", "-", "*", "/", "<", "==", "and", "or", "in", "is"]), inner).map(
-            lambda t: f"({t[0]} {t[1]} {t[2]})"
+        st.sampled_from(
+            ["charge", "'1 kg'", "limit", "'2 bar g'", "duty", "'cold_storage'", "flammable", "unknown", "3", "none"]
         ),
+        lambda inner: st.tuples(
+            inner, st.sampled_from(["+", "-", "*", "/", "<", "==", "and", "or", "in", "is"]), inner
+        ).map(lambda t: f"({t[0]} {t[1]} {t[2]})"),
         max_leaves=8,
     )
-)  # fmt: skip
+)
 def test_whatever_passes_the_check_can_be_worked_out(text: str) -> None:
     """An expression that was accepted never fails when it is worked out, and gives the type that was promised."""
     try:

@@ -123,13 +123,22 @@ items:
         ("stage: trim\nitems:\n  - {id: Trim One, do: Weigh., source: ours}\n", "plain words"),
         ("stage: trim\nitems:\n  - {id: trim.x, do: 'Read {system.charge.', source: ours}\n", "brace is not closed"),
         ("stage: trim\nitems:\n  - {id: trim.x, do: 'Read [[it.', source: ours}\n", "brackets are not closed"),
-        ("stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours, move: {to: nowhere, when: 'yes'}}\n", "no stage has this id"),
-        ("stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours, when: system.charge}\n", "a condition is wanted"),
-        ("stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours}\n  - {id: trim.x, do: Go., source: ours}\n", "used twice"),
+        (
+            "stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours, move: {to: nowhere, when: 'yes'}}\n",
+            "no stage has this id",
+        ),
+        (
+            "stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours, when: system.charge}\n",
+            "a condition is wanted",
+        ),
+        (
+            "stage: trim\nitems:\n  - {id: trim.x, do: Read., source: ours}\n  - {id: trim.x, do: Go., source: ours}\n",
+            "used twice",
+        ),
         ("stage: trim\nitems: !!python/object:os.system [true]\n", "tag"),
         ("stage: trim\nstage: trim\n", "written twice"),
     ],
-)  # fmt: skip
+)
 def test_what_cannot_be_used_is_refused(example_copy: Path, text: str, words: str) -> None:
     """Each fault of form or meaning is a problem at its place."""
     assert any(words in problem.message for problem in refused(example_copy, text).problems)

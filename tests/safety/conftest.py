@@ -31,7 +31,8 @@ systems:
     receiver: {{{receiver}}}
     controls: {{{controls}}}
     rated_points:
-      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 28 °C, cooling_capacity: 3.4 kW, power_input: 1.5 kW}}
+      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 28 °C,
+         cooling_capacity: 3.4 kW, power_input: 1.5 kW}}
 """
 PLAIN = {
     "altitude": "0 m",

@@ -64,7 +64,13 @@ def test_every_refrigerant_says_what_it_does_to_people() -> None:
 def test_the_plant_can_bring_its_own_language(plant: Plants) -> None:
     """emergency_card.yaml in the plant folder replaces the text whole, with the same words filled in."""
     loaded = plant()
-    own = "title: Wenn Gas austritt\nlanguage: de\nsections:\n  - title: Zuerst\n    lines:\n      - 'Alle hinaus: {charge} {refrigerant}'\n"
+    own = """title: Wenn Gas austritt
+language: de
+sections:
+  - title: Zuerst
+    lines:
+      - 'Alle hinaus: {charge} {refrigerant}'
+"""
     (loaded.folder / "emergency_card.yaml").write_text(own, encoding="utf-8")
     found = card(loaded)
     assert found.replaced

@@ -26,7 +26,7 @@ def limits(space: SpaceCharge) -> dict[str, float]:
 
 
 def test_propane_cold_room_by_each_document(plant: Plants) -> None:
-    """0.038 x 20 % x 67.2 m³ = 0.511 kg, 0.008 x 67.2 = 0.538 kg, RCL 0.0095 x 67.2 = 0.638 kg; the lowest is advised."""
+    """0.038 x 20 % x 67.2 m³ = 0.511 kg, 0.008 x 67.2 = 0.538 kg, RCL 0.0095 x 67.2 = 0.638 kg; lowest advised."""
     room = of(plant())["room"]
     values = sorted(limits(room).values())
     assert values == pytest.approx([0.2 * 0.038 * VOLUME, 0.008 * VOLUME, 0.0095 * VOLUME])

@@ -73,7 +73,9 @@ def test_one_stamp_alone_says_so(plant: Plants) -> None:
 
 def test_standstill_is_the_bubble_point_at_the_hottest_ambient(plant: Plants) -> None:
     """CoolProp's published check: R-290 at 20 °C 836.46 kPa, at 40 °C 1369.4 kPa (handbook values)."""
-    assert safety_figures(plant(summer="40 °C"), "one").found["standstill_pressure"].value == pytest.approx(1369.4e3, rel=1e-3)
+    assert safety_figures(plant(summer="40 °C"), "one").found["standstill_pressure"].value == pytest.approx(
+        1369.4e3, rel=1e-3
+    )
 
 
 def test_carbon_dioxide_has_no_standstill_saturation_on_a_hot_day(plant: Plants) -> None:
@@ -90,7 +92,10 @@ def test_a_blend_stands_at_its_bubble_point(plant: Plants) -> None:
     assert value > fluid.dew(303.15).p * 1.05
 
 
-@pytest.mark.parametrize(("summer", "high", "low"), [("32 °C", 55, 27), ("32.1 °C", 59, 33), ("38 °C", 59, 33), ("43 °C", 63, 38), ("55 °C", 67, 38)])
+@pytest.mark.parametrize(
+    ("summer", "high", "low"),
+    [("32 °C", 55, 27), ("32.1 °C", 59, 33), ("38 °C", 59, 33), ("43 °C", 63, 38), ("55 °C", 67, 38)],
+)
 def test_ambient_classes_and_their_edges(plant: Plants, summer: str, high: float, low: float) -> None:
     """EN 378-2 table 2 (from memory; 59 and 33 °C at up to 38 °C read in RSIF): an edge belongs to its own column."""
     found = safety_figures(plant(summer=summer), "one").found
@@ -118,12 +123,18 @@ def test_limits_in_good_order_give_no_finding(plant: Plants) -> None:
     [
         ({"controls": "high_pressure_limit: 25.3 bar g"}, "above what the nameplate allows"),
         ({"receiver": "volume: 2 L, relief_valve: 28.1 bar g"}, "opens above the allowable pressure"),
-        ({"controls": "high_pressure_limit: 24 bar g", "receiver": "volume: 2 L, relief_valve: 23 bar g"}, "before the high-pressure limit"),
-        ({"nameplate": "allowable_pressure_low: 9 bar g, allowable_pressure_high: 28 bar g", "summer": "38 °C"}, "at standstill on the hottest day the low side"),
+        (
+            {"controls": "high_pressure_limit: 24 bar g", "receiver": "volume: 2 L, relief_valve: 23 bar g"},
+            "before the high-pressure limit",
+        ),
+        (
+            {"nameplate": "allowable_pressure_low: 9 bar g, allowable_pressure_high: 28 bar g", "summer": "38 °C"},
+            "at standstill on the hottest day the low side",
+        ),
     ],
-)  # fmt: skip
+)
 def test_limits_out_of_order_are_found(plant: Plants, changes: dict[str, str], words: str) -> None:
-    """EN 378-2 table 3: limit at most 0.9 PS with relief, relief at most PS, limit below relief; standstill below PS."""
+    """EN 378-2 table 3: limit up to 0.9 PS with relief, relief up to PS, limit below relief; standstill below PS."""
     loaded = plant(**changes)
     problems = limit_order(loaded, "one", safety_figures(loaded, "one")).problems
     assert any(words in problem.title for problem in problems)

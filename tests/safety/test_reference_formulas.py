@@ -77,7 +77,7 @@ def test_allowable_pressure_from_saturation(name: str, celsius: float, published
 
 
 def test_design_temperatures_that_published_examples_use() -> None:
-    """RSIF IF-06 3.6 takes 59 °C for an air-cooled high side and 33 °C for an indoor low side at ambient up to 38 °C."""
+    """RSIF IF-06 3.6: 59 °C for an air-cooled high side, 33 °C for an indoor low side, ambient up to 38 °C."""
     table = load("design_temperatures.yaml")
     column = table["ambient_at_most"].index("38 °C")
     assert table["rows"]["high_side_air_cooled"]["at"][column] == "59 °C"
@@ -88,7 +88,9 @@ def test_emergency_ventilation_of_a_hundred_kilograms() -> None:
     """EN 378-3:2016 5.13 gives 0.302 m³/s and ASHRAE 15 gives 0.700 m³/s for 100 kg; 100·√(220.46 lb) cfm agrees."""
     assert emergency_ventilation_en378(100) == pytest.approx(0.302, abs=5e-4)
     assert emergency_ventilation_ashrae15(100) == pytest.approx(0.700, abs=5e-4)
-    assert emergency_ventilation_ashrae15(100) == pytest.approx(100 * (100 / 0.45359237) ** 0.5 * 0.3048**3 / 60, rel=0.0015)
+    assert emergency_ventilation_ashrae15(100) == pytest.approx(
+        100 * (100 / 0.45359237) ** 0.5 * 0.3048**3 / 60, rel=0.0015
+    )
 
 
 @pytest.mark.parametrize("bar", [1.0, 10.0, 18.7, 30.8, 60.0])
@@ -123,7 +125,7 @@ def test_nitrogen_hold_refuses_what_it_cannot_answer(wrong: tuple[float, float, 
 
 
 def test_evacuation_levels_in_both_units() -> None:
-    """270 Pa = 2025 micron, 675 Pa = 5063 micron (RSIF IF-09 1.6; 1 micron of mercury = 0.133322 Pa); 500 micron = 66.7 Pa."""
+    """270 Pa = 2025 micron, 675 Pa = 5063 micron (RSIF IF-09 1.6; 1 micron = 0.133322 Pa); 500 micron = 66.7 Pa."""
     assert fact("evacuation_limit").value / 0.133322387415 == pytest.approx(2025, abs=0.5)
     assert fact("evacuation_limit_ammonia").value / 0.133322387415 == pytest.approx(5063, abs=0.5)
     assert fact("evacuation_target").value == pytest.approx(66.7, abs=0.05)
@@ -145,7 +147,7 @@ def test_steps_of_the_pressure_test() -> None:
     ("name", "kilograms"), [("R-134a", 3.5), ("R-404A", 1.27), ("R-407C", 2.8), ("R-410A", 2.4), ("R-32", 7.4)]
 )
 def test_kilograms_that_make_five_tonnes(name: str, kilograms: float) -> None:
-    """Public trade figures of the charge that equals 5 t CO₂: R-134a 3.5, R-404A 1.27, R-407C 2.8, R-410A 2.4, R-32 7.4 kg."""
+    """Public trade page, kg for 5 t CO₂: R-134a 3.5, R-404A 1.27, R-407C 2.8, R-410A 2.4, R-32 7.4."""
     gwp = refrigerant(name).register.gwp["eu573"].number
     assert gwp is not None
     assert co2_equivalent(kilograms, gwp) == pytest.approx(5000, rel=0.01)
