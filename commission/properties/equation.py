@@ -15,16 +15,15 @@ from typing import Any
 from commission.properties.coolprop import load
 from commission.properties.errors import PropertyRangeError, bar, celsius
 from commission.properties.lines import FluidData
+from commission.properties.saturation import GAS_CONSTANT
 
 SMALL_STEP = 1e-5  # a Newton step this small is closed by the first-order correction: what is left is 1e-10
 MAX_STEPS = 50
-GAS_CONSTANT = 8.314462618  # J/(mol K), CODATA 2018
 
 
 @dataclass(slots=True)
 class Point:
-    """Values and first derivatives at (rho kg/m3, T K); p Pa, h J/kg, s J/(kg K), cv J/(kg K); `_t` is by
-    temperature."""
+    """Values and first derivatives at rho (kg/m3) and T (K), `_t` by temperature; Pa, J/kg, J/(kg K)."""
 
     rho: float
     T: float
@@ -89,11 +88,20 @@ class Equation:
         return self._local.calls
 
     def at(self, rho: float, T: float) -> Point:
-        """Everything at density `rho` (kg/m3) and temperature `T` (K); no range is checked here."""
+        """Everything at density `rho` (kg/m3) and temperature `T` (K); no range is checked here.
+
+        Raises:
+            PropertyRangeError: the equation gives no number there.
+        """
         local = self._local
         local.calls += 1
         state = local.state
-        state.update(local.inputs, rho, T)
+        try:
+            state.update(local.inputs, rho, T)
+        except ValueError:
+            raise PropertyRangeError(
+                self.data.refrigerant, f"the equation of state gives no number at {rho:.6g} kg/m3 and {T:.6g} K"
+            ) from None
         return Point(
             rho,
             T,

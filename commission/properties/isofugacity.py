@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 
 from commission.errors import NotCalculatedError
 from commission.properties.coolprop import load
+from commission.properties.saturation import GAS_CONSTANT
 
 Array = NDArray[np.float64]
 MAX_STEPS = 60
@@ -86,7 +87,7 @@ class Phases:
         else:
             p = 1.0 / float((self.z / p_pure).sum())
             x = other = self.z * p / p_pure
-        rho_vapour = p / (8.314462618 * T) * 1.02
+        rho_vapour = p / (GAS_CONSTANT * T) * 1.02
         return np.concatenate([[np.log(1.0 / float(x @ v_pure)), np.log(rho_vapour)], np.log(other[:-1] / other[-1])])
 
     def solve(self, T: float, incipient: str, start: Array | None = None) -> tuple[Equilibrium, Array]:

@@ -13,7 +13,7 @@ from functools import cache, cached_property
 from typing import TYPE_CHECKING
 
 from commission.properties.errors import PropertyRangeError, bar, celsius
-from commission.properties.saturation import EDGE, Saturation
+from commission.properties.saturation import EDGE, GAS_CONSTANT, Saturation
 from commission.properties.states import SaturationState, Slopes, State
 
 if TYPE_CHECKING:
@@ -158,12 +158,12 @@ class Refrigerant(Saturation):
         """Dew temperature at `p` (0 where `p` lies below the line) and a density to start from at (T, p)."""
         if not p > 0:
             raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
-        ideal = p * self.molar_mass / (8.314462618 * T)
+        ideal = p * self.molar_mass / (GAS_CONSTANT * T)
         if p < self.p_dew_low:
             return 0.0, ideal
         T_dew = self._dew.temperature(p)
         rho_dew = math.exp(self._dew.row(T_dew)[3])
-        gap = 1 - p * self.molar_mass / (8.314462618 * T_dew * rho_dew)
+        gap = 1 - p * self.molar_mass / (GAS_CONSTANT * T_dew * rho_dew)
         return T_dew, ideal / (1 - gap * (T_dew / max(T, T_dew)) ** 3)
 
     def _need_gas_temperature(self, T: float) -> None:
@@ -174,6 +174,10 @@ class Refrigerant(Saturation):
                 "where the equation of state holds",
             )
 
+    def _need_finite(self, h: float) -> None:
+        if not math.isfinite(h):
+            raise PropertyRangeError(self.name, f"an enthalpy of {h} cannot be")
+
     # From pressure with enthalpy or entropy
 
     def isentropic_end(self, state: State | SaturationState, p: float) -> State:
@@ -183,6 +187,8 @@ class Refrigerant(Saturation):
             PropertyRangeError: the end lies outside the range, or in the liquid.
         """
         if p > self.p_dew_high:
+            if isinstance(state, State) and state.quality is not None:  # first dry it along the isentrope
+                state = self._vapour_or_wet(0.7 * self.p_dew_high, "s", state.s, wet=None)
             return _state(self._held(self._beyond.isentropic_end(state, p)))
         return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region")
 
@@ -192,6 +198,7 @@ class Refrigerant(Saturation):
         Raises:
             PropertyRangeError: `h` below the dew line, or the state outside the range.
         """
+        self._need_finite(h)
         if p > self.p_dew_high:
             return self._from_enthalpy_beyond(p, h)
         return self._vapour_or_wet(p, "h", h, wet=None)
@@ -202,6 +209,7 @@ class Refrigerant(Saturation):
         Raises:
             PropertyRangeError: outside the range.
         """
+        self._need_finite(h)
         if p > self.p_dew_high:
             return self._from_enthalpy_beyond(p, h)
         isobar = self._wet(p)
@@ -213,8 +221,7 @@ class Refrigerant(Saturation):
         return isobar.state(x)
 
     def mean_evaporating_temperature(self, p: float, h_in: float) -> float:
-        """Temperature (K) at which the refrigerant takes up heat at `p` (Pa), averaged over that heat from `h_in` to
-        dew.
+        """Temperature (K) of evaporation at `p` (Pa), averaged over the heat taken up from `h_in` to the dew point.
 
         This is the average over enthalpy, so that heat = conductance x difference holds to first order; the mean of
         inlet and dew temperature differs from it by up to 1 K for a blend of large glide.
@@ -222,6 +229,7 @@ class Refrigerant(Saturation):
         Raises:
             PropertyRangeError: `p` outside the wet range, or `h_in` not below the dew line.
         """
+        self._need_finite(h_in)
         isobar = self._wet(p)
         x = isobar.fraction(h_in)
         if not x < 1:
@@ -247,8 +255,9 @@ class Refrigerant(Saturation):
         at_dew = s if name == "s" else h
         if value < at_dew:
             if wet is None:
+                unit = "kJ/kg" if name == "h" else "kJ/(kg K)"
                 raise PropertyRangeError(
-                    self.name, f"{value / 1e3:.1f} kJ/kg is below the dew line ({h / 1e3:.1f} kJ/kg) at {bar(p)}"
+                    self.name, f"{value / 1e3:.3f} {unit} is below the dew line ({at_dew / 1e3:.3f} {unit}) at {bar(p)}"
                 )
             return self._wet_at_entropy(p, value, wet)
         rho = math.exp(ln_rho)

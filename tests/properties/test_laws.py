@@ -174,5 +174,5 @@ def test_next_to_the_critical_point_a_state_is_vapour_or_liquid_not_both(name: s
             is_vapour = p < r.continued_bubble_pressure(float(T))
             answers, refuses = (r.vapour, r.liquid) if is_vapour else (r.liquid, r.vapour)
             assert answers(float(T), float(p)).rho > 0
-            with pytest.raises(PropertyRangeError, match="vapour forms|not vapour alone"):
+            with pytest.raises(PropertyRangeError, match=r"vapour forms|not vapour alone"):
                 refuses(float(T), float(p))

@@ -128,6 +128,34 @@ def test_nearness_to_critical_is_a_warning() -> None:
     assert "R-410A at 63.9 °C is within 3 % of its critical temperature (71.3 °C)" in warning
 
 
+@pytest.mark.parametrize("h", [math.nan, math.inf, -math.inf])
+def test_an_enthalpy_that_is_no_number_is_refused(r454b: Refrigerant, h: float) -> None:
+    """No state of not-a-number is handed on."""
+    p = r454b.dew(280.0).p
+    for ask in (r454b.throttled, r454b.vapour_from_enthalpy, r454b.mean_evaporating_temperature):
+        with pytest.raises(PropertyRangeError, match="cannot be"):
+            ask(p, h)
+
+
+def test_the_equation_alone_never_leaks_the_librarys_error() -> None:
+    """A density that is no number is refused in this room's own words."""
+    with pytest.raises(PropertyRangeError, match="gives no number at nan"):
+        refrigerant("R-290")._equation.at(math.nan, 300.0)
+
+
+def test_wet_suction_past_the_critical_pressure_is_dried_on_the_way() -> None:
+    """Carbon dioxide drawn in with 5 % liquid ends as gas with the same entropy."""
+    r = refrigerant("R-744")
+    dew, bubble = r.dew(263.15), r.bubble(263.15)
+    wet = r.throttled(dew.p, dew.h - 0.05 * (dew.h - bubble.h))
+    end = r.isentropic_end(wet, 95e5)
+    assert end.s == pytest.approx(wet.s, abs=1e-5)
+    assert end.quality is None
+    assert end.T > 320
+    with pytest.raises(PropertyRangeError, match=r"kJ/\(kg K\) is below the dew line"):
+        r.isentropic_end(r.throttled(dew.p, bubble.h + 10e3), 95e5)
+
+
 def test_throttled_states_reach_into_liquid_and_vapour(r290: Refrigerant) -> None:
     """Expansion that ends subcooled or superheated is given as such; colder than the line is refused."""
     p = r290.dew(280.0).p
