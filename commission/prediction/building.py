@@ -9,11 +9,13 @@ from dataclasses import dataclass
 from commission.errors import NotCalculatedError
 from commission.machine import (
     Exchanger,
+    GasCoolerPressure,
     HeadPressure,
     Media,
     SingleStage,
     Stream,
     SuctionLine,
+    Transcritical,
     air_stream,
     coil_conductance,
     conductance_for,
@@ -24,6 +26,7 @@ from commission.prediction.facts import CONDENSER_FAN, EVAPORATOR_FAN, Facts
 from commission.properties import Liquid
 
 KELVIN = 273.15
+Machine = SingleStage | Transcritical
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,7 +79,7 @@ class Rated:
 class Plan:
     """All of one system that a prediction needs, for one set of assumption values and levels."""
 
-    machine: SingleStage
+    machine: Machine
     fans: Fans
     rated: Rated
     source_humidity: float
@@ -173,23 +176,26 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     line, surroundings = suction_line(facts, a, rated, superheat)
     compressor = compressor_of(facts, a, levels.swept_flow, levels.isentropic)
     exponent = a["air_side_exponent"]
-    control = system.controls.head_pressure
-    held = None
-    if control is not None:
-        held = HeadPressure(
-            control.by, control.hold + a["head_pressure_departure"], a["least_fan_share"], a["fan_power_exponent"]
+    evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a))
+    condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)
+    machine: Machine
+    if facts.transcritical:
+        pressure = gas_cooler_pressure(facts, a)
+        machine = Transcritical(
+            facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, pressure=pressure
         )
-    machine = SingleStage(
-        refrigerant=facts.fluid,
-        compressor=compressor,
-        evaporator=Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a)),
-        condenser=Exchanger(levels.condenser, rated.sink_flow, exponent),
-        superheat=superheat,
-        subcooling=a["liquid_subcooling"],
-        suction_line=line,
-        discharge_line_loss=a["discharge_line_loss"],
-        head_pressure=held,
-    )
+    else:
+        machine = SingleStage(
+            refrigerant=facts.fluid,
+            compressor=compressor,
+            evaporator=evaporator,
+            condenser=condenser,
+            superheat=superheat,
+            subcooling=a["liquid_subcooling"],
+            suction_line=line,
+            discharge_line_loss=a["discharge_line_loss"],
+            head_pressure=head_pressure(facts, a),
+        )
     cos_phi = system.compressor.power_factor
     return Plan(
         machine=machine,
@@ -199,6 +205,51 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
     )
+
+
+def head_pressure(facts: Facts, a: Mapping[str, float]) -> HeadPressure | None:
+    """The head-pressure control with its setting as it may really be held."""
+    control = facts.system.controls.head_pressure
+    if control is None:
+        return None
+    hold = control.hold + a["head_pressure_departure"]
+    return HeadPressure(control.by, hold, a["least_fan_share"], a["fan_power_exponent"])
+
+
+def gas_cooler_pressure(facts: Facts, a: Mapping[str, float]) -> GasCoolerPressure:
+    """How the high pressure of a carbon-dioxide circuit is set; where nobody says, it follows the outlet.
+
+    Raises:
+        NotCalculatedError: the pressure is left to the charge alone, or a fixed set point is not stated.
+    """
+    control = facts.system.controls.gas_cooler_pressure
+    hot_water = facts.system.duty == "water_heating" and facts.sink_liquid is not None
+    if control is None and hot_water:
+        return GasCoolerPressure("fixed set point", a["hot_water_pressure"] * facts.fluid.p_critical)
+    if control is None:
+        return GasCoolerPressure("follows the gas-cooler outlet", factor=1 + a["gas_cooler_pressure_departure"])
+    if control.by == "charge alone":
+        raise NotCalculatedError(
+            "the high pressure is left to the charge alone, which this model does not carry for carbon dioxide: state "
+            "under controls.gas_cooler_pressure a set point or that it follows the gas-cooler outlet"
+        )
+    set_point = facts.loaded.absolute(control.set_point) if control.set_point is not None else None
+    if control.by == "fixed set point" and set_point is None:
+        raise NotCalculatedError("controls.gas_cooler_pressure is a fixed set point, but does not say which")
+    least = 0.0
+    if hot_water and control.lowest is None and set_point is None:
+        least = a["hot_water_pressure"] * facts.fluid.p_critical
+    return GasCoolerPressure(
+        control.by,
+        set_point,
+        factor=1 + a["gas_cooler_pressure_departure"] if set_point is None else 1.0,
+        lowest=facts.loaded.absolute(control.lowest) if control.lowest is not None else least,
+        highest=facts.loaded.absolute(control.highest) if control.highest is not None else HIGHEST,
+    )
+
+
+HIGHEST = 1.4e7
+"""Highest pressure in Pa of a transcritical circuit where none is stated: that of the components in use."""
 
 
 def outdoors_is_sink(facts: Facts) -> bool:

@@ -54,6 +54,11 @@ class Facts:
         return self.loaded.barometric_pressure
 
     @property
+    def transcritical(self) -> bool:
+        """Whether the high side has a gas cooler: carbon dioxide on one stage."""
+        return self.fluid.name == "R-744"
+
+    @property
     def nominal(self) -> dict[str, float]:
         """The assumption list as plain values."""
         return {key: a.value for key, a in self.assumptions.items()}

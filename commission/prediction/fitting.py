@@ -17,7 +17,7 @@ import numpy as np
 
 from commission.description import Assumption
 from commission.errors import NotCalculatedError
-from commission.machine import conductance_for
+from commission.machine import Transcritical, conductance_for
 from commission.prediction.building import (
     SINK_HUMIDITY,
     Levels,
@@ -161,7 +161,7 @@ def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: b
     if evaporator and "evaporating_temperature" not in stated:
         assume("source_minus_evaporating", "source_minus_evaporating")
     if condenser and "condensing_temperature" not in stated:
-        assume("condensing_minus_sink_inlet", "condensing_minus_sink_inlet")
+        assume("condensing_minus_sink_inlet", sink_difference(facts))
     if published:
         return extra
     if not {"power_input", "compressor_power"} & stated and not {"cooling_capacity", "heating_capacity"} <= stated:
@@ -187,6 +187,8 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     plan = build(facts, a, Levels(1.0, 1.0, 1.0, 1.0), rated)
     conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
     compression, source, _ = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
+    if isinstance(plan.machine, Transcritical):
+        return _gas_cooler_start(problem, a, rated, plan, evaporating, condensing)
     if problem.fixed_compressor:
         heat = source + compression.power
         return Levels(1.0, 1.0, *_conductances(problem, a, rated, evaporating, condensing, heat))
@@ -205,28 +207,60 @@ def _start(problem: _Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     return Levels(swept, isentropic, *_conductances(problem, a, rated, evaporating, condensing, heat))
 
 
+def _gas_cooler_start(
+    problem: _Problem, a: Mapping[str, float], rated: Rated, plan: Plan, evaporating: float, outlet: float
+) -> Levels:
+    """Levels of a transcritical machine: the gas cooler's conductance follows from its outlet temperature."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+    machine = plan.machine
+    assert isinstance(machine, Transcritical)
+    conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
+    around = media(facts, plan, conditions)
+    compression, source, _ = machine.cycle(evaporating, outlet, around)
+    swept = 1.0 if problem.fixed_compressor else rated.source_heat / source
+    power = {d.of: d.value for d in case.data}.get("power_input")
+    counted = plan.fans.counted(1.0)
+    isentropic = swept * compression.power / (power - counted) if power is not None and power > counted else 0.65
+    if problem.fixed_compressor:
+        isentropic = 1.0
+    small = replace(around, sink=replace(around.sink, capacity_rate=around.sink.capacity_rate / swept))
+    slow = build(facts, a, Levels(1.0, isentropic, 1.0, 1.0), rated).machine
+    assert isinstance(slow, Transcritical)
+    conductance = swept * slow.cycle_conductance(evaporating, outlet, small)
+    evaporator = _evaporator(facts, a, rated, case)
+    if evaporator is None:
+        difference = rated.source_temperature - evaporating
+        evaporator = source_conductance(rated.source_heat, difference, around.source, air_share(facts, a))
+    return Levels(swept, isentropic, conductance, evaporator)
+
+
 def _dew_points(
     problem: _Problem, a: Mapping[str, float], rated: Rated, given: Mapping[str, float]
 ) -> tuple[float, float]:
     """Evaporating and condensing dew points (K) at the reference point, as stated or assumed."""
     facts, case = problem.facts, problem.cases[problem.reference]
 
-    def assumed(key: str) -> float:
-        return given[key] if key in given else a[key]
+    def assumed(of: str, key: str) -> float:
+        return given[of] if of in given else a[key]
 
     if case.unit is not None:
         evaporating = case.unit.evaporating
     elif "evaporating_temperature" in given:
         evaporating = given["evaporating_temperature"]
     else:
-        evaporating = rated.source_temperature - assumed("source_minus_evaporating")
+        evaporating = rated.source_temperature - assumed("source_minus_evaporating", "source_minus_evaporating")
         evaporating += 0.35 * _glide(facts, evaporating)
     condensing = given.get("condensing_temperature")
     if condensing is None:
-        difference = 12.0 if problem.fixed_condenser else assumed("condensing_minus_sink_inlet")
+        difference = 12.0 if problem.fixed_condenser else assumed("condensing_minus_sink_inlet", sink_difference(facts))
         condensing = rated.sink_temperature + difference
         condensing += 0.5 * _glide(facts, condensing)
     return evaporating, condensing
+
+
+def sink_difference(facts: Facts) -> str:
+    """Key of the assumption that sizes a condenser or a gas cooler of which nothing is stated."""
+    return "gas_cooler_approach" if facts.transcritical else "condensing_minus_sink_inlet"
 
 
 def _glide(facts: Facts, temperature: float) -> float:

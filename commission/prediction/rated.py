@@ -262,7 +262,8 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
         cooling, heating = 2.5 * power, 3.5 * power
     elif facts.system.compressor.polynomial is not None or facts.system.compressor.table is not None:
         evaporating = case.source_temperature - a["source_minus_evaporating"]
-        condensing = case.sink_temperature + a["condensing_minus_sink_inlet"]
+        key = "gas_cooler_approach" if facts.transcritical else "condensing_minus_sink_inlet"
+        condensing = case.sink_temperature + a[key]
         cooling, power = estimate(facts, a, evaporating, condensing)
         heating = cooling + power
     else:
