@@ -17,7 +17,7 @@ from commission.description.model import AssumptionOverride, Part, System
 from commission.description.positions import DescriptionError, KeyPath, Positions
 from commission.description.reading import read_yaml
 from commission.errors import Problem, nearest
-from commission.quantities import NOMENCLATURE, Kind, QuantityError, parse
+from commission.quantities import NOMENCLATURE, Kind, QuantityError, Reference, parse, parse_pressure
 
 LIBRARY = "assumptions.yaml"
 Mark = Literal["published", "standard", "definition", "common practice, no source", "from memory"]
@@ -97,6 +97,20 @@ def library() -> Mapping[str, Entry]:
     return MappingProxyType(entries)
 
 
+def in_si(text: str, kind: Kind) -> float:
+    """A value of the list in SI; a pressure is absolute, since the list knows no site.
+
+    Raises:
+        QuantityError: the text is not a quantity of this kind, or a gauge pressure.
+    """
+    if kind is not Kind.PRESSURE:
+        return parse(text, kind)
+    pressure = parse_pressure(text)
+    if pressure.reference is Reference.GAUGE:
+        raise QuantityError(Problem("an absolute pressure is wanted here", value=text, allowed="such as 90 bar a"))
+    return pressure.pascal
+
+
 def _faults(entry: Entry, positions: Positions, at: KeyPath) -> Iterator[Problem]:
     for number, key in enumerate(entry.moves):
         if key not in NOMENCLATURE:
@@ -121,7 +135,7 @@ def range_problems(
         if text is None:
             continue
         try:
-            read[name] = parse(text, kind)
+            read[name] = in_si(text, kind)
         except QuantityError as error:
             first = error.problems[0]
             yield positions.problem((*at, name), first.message, allowed=first.allowed, nearest=first.nearest)
@@ -166,16 +180,16 @@ def assumptions_for(system: System, positions: Positions | None = None, at: KeyP
             continue
         one: Entry | Case = next((case for case in entry.cases if _applies(case.when, of)), entry)
         found[key] = Assumption(
-            key, entry.title, parse(one.value, entry.kind), parse(one.low, entry.kind), parse(one.high, entry.kind),
+            key, entry.title, in_si(one.value, entry.kind), in_si(one.low, entry.kind), in_si(one.high, entry.kind),
             entry.kind, one.source or entry.source, one.mark or entry.mark, entry.moves, entry.replaced_by, "library",
         )  # fmt: skip
     return MappingProxyType(found)
 
 
 def _own(key: str, entry: Entry, own: AssumptionOverride, origin: str) -> Assumption:
-    value = parse(own.value, entry.kind)
-    low = parse(own.low, entry.kind) if own.low is not None else value
-    high = parse(own.high, entry.kind) if own.high is not None else value
+    value = in_si(own.value, entry.kind)
+    low = in_si(own.low, entry.kind) if own.low is not None else value
+    high = in_si(own.high, entry.kind) if own.high is not None else value
     return Assumption(
         key, entry.title, value, low, high, entry.kind, own.source, "stated in the description", entry.moves,
         entry.replaced_by, origin,

@@ -7,6 +7,8 @@ from typing import Any
 import pytest
 
 from commission.description import DescriptionError, LoadedPlant, Position, load_plant
+from commission.description.assembling import MAX_FILES
+from commission.description.reading import MAX_PARTS
 from commission.description.taking_over import MAX_TAKEN_OVER
 from commission.errors import Problem
 
@@ -245,6 +247,23 @@ def test_a_description_cannot_reach_out_of_its_folder_by_a_link(
     (folder / "link.yaml").symlink_to(tmp_path / "secret.yaml")
     (problem,) = problems(includes("link.yaml"))
     assert "outside the folder" in problem.message
+
+
+def test_the_files_of_a_plant_are_bounded_together(problems: Problems, folder: Path) -> None:
+    """Many files near the limit do not add up to more than one file may hold."""
+    text = "spaces: {" + ",".join(f"r{{0}}n{n}: {{}}" for n in range(MAX_PARTS // 4)) + "}\n"
+    names = [f"r{n}.yaml" for n in range(6)]
+    for name in names:
+        (folder / name).write_text(text.replace("{0}", name[1]), encoding="utf-8")
+    assert any("keys and values with this file" in p.message for p in problems(includes(*names)))
+
+
+def test_the_number_of_files_is_bounded(problems: Problems, folder: Path) -> None:
+    """A plant has a few files, not hundreds."""
+    names = [f"r{n}.yaml" for n in range(MAX_FILES + 5)]
+    for name in names:
+        (folder / name).write_text("spaces: {}\n", encoding="utf-8")
+    assert [p.message for p in problems(includes(*names))] == [f"more than {MAX_FILES} files"]
 
 
 def test_problems_of_two_files_are_in_the_order_of_the_files(folder: Path, load: Load) -> None:

@@ -7,8 +7,8 @@ from typing import Any
 import pytest
 
 from commission.description import LoadedPlant
-from commission.description.assumptions import Entry, library
-from commission.quantities import NOMENCLATURE
+from commission.description.assumptions import Entry, in_si, library
+from commission.quantities import NOMENCLATURE, Kind, QuantityError
 
 Load = Callable[..., LoadedPlant]
 
@@ -40,6 +40,15 @@ def test_cases_follow_the_system(load: Load) -> None:
     ]
     assert with_one.high < without.high
     assert with_one.source != without.source
+
+
+def test_pressures_of_the_list_are_absolute() -> None:
+    """The list knows no site, so a gauge pressure has no meaning in it."""
+    assert in_si("90 bar a", Kind.PRESSURE) == 9e6
+    assert in_si("6 K", Kind.TEMPERATURE_DIFFERENCE) == 6.0
+    with pytest.raises(QuantityError) as caught:
+        in_si("90 bar g", Kind.PRESSURE)
+    assert "absolute" in caught.value.problems[0].message
 
 
 def test_own_values_replace_the_library(load: Load) -> None:

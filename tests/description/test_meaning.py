@@ -233,6 +233,16 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
         "systems.one.compressor.polynomial",
         "need a flow or a capacity",
     ),
+    "polynomials beside a table": (
+        lambda d: one(d).update(
+            compressor={
+                "polynomial": {"temperature_unit": "°C", "power": ["1"] * 10, "mass_flow": ["1"] * 10},
+                "table": {"points": [{**TABLE_POINT, "cooling_capacity": "3 kW"}]},
+            }
+        ),
+        "systems.one.compressor.table",
+        "say the same",
+    ),
     "compressor point without result": (
         lambda d: one(d).update(compressor={"table": {"points": [TABLE_POINT]}}),
         "systems.one.compressor.table.points.0",
