@@ -145,7 +145,7 @@ class _Circuit(Circuit):
         return fluid.bubble_temperature(fluid.dew(condensing).p) if fluid.is_blend else condensing
 
     def _sink_gap(self, condensing: float, given: float, share: float) -> float:
-        m, sink = self.machine, self.media.sink
+        m, sink = self.machine, self.media.sink.settled(given)
         by = m.head_pressure.by if m.head_pressure else None
         per_kelvin = heat_per_kelvin(by, share, m.condenser, sink)
         taken = per_kelvin * (self.sink_drive(condensing) - sink.temperature)
@@ -177,7 +177,13 @@ class _Circuit(Circuit):
         difference = self.sink_drive(condensing) - self.media.sink.temperature
         if difference <= 0:
             return None
-        share = share_for(control.by, given / difference, self.machine.condenser, self.media.sink, control.least_share)
+        share = share_for(
+            control.by,
+            given / difference,
+            self.machine.condenser,
+            self.media.sink.settled(given),
+            control.least_share,
+        )
         if share is None:
             return None
         if share == control.least_share:
@@ -205,8 +211,9 @@ class _Circuit(Circuit):
     def _result(self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution) -> Balance:
         control = self.machine.head_pressure
         flow = flow_share(control, share)
-        through = replace(self.media.sink, capacity_rate=flow * self.media.sink.capacity_rate)
         compression, source, sink = self.cycle(evaporating, condensing)
+        settled = self.media.sink.settled(sink)
+        through = replace(settled, capacity_rate=flow * settled.capacity_rate)
         return Balance(
             regime=regime,
             evaporating_temperature=evaporating,

@@ -14,6 +14,7 @@ class Stream:
     """One medium on its way through an exchanger.
 
     `temperature` in K is known at the inlet, or at the outlet with `by_outlet` (as water heating is rated);
+    with `outlet_wanted` (K) inlet and outlet are known and the flow follows from the heat (once-through water heating).
     `volume_flow` in m3/s at that state, `mass_flow` in kg/s (dry air for air), `capacity_rate` in W/K. `air` is the
     moist-air state at the inlet, None for a liquid.
     """
@@ -24,6 +25,15 @@ class Stream:
     capacity_rate: float
     air: MoistAir | None = None
     by_outlet: bool = False
+    outlet_wanted: float | None = None
+
+    def settled(self, heat: float) -> Stream:
+        """The medium at the flow with which `heat` (W) brings it to the outlet that is wanted; itself where none is."""
+        if self.outlet_wanted is None:
+            return self
+        rate = max(heat, 1.0) / (self.outlet_wanted - self.temperature)
+        share = rate / self.capacity_rate
+        return Stream(self.temperature, share * self.volume_flow, share * self.mass_flow, rate, self.air)
 
     def inlet(self, taken: float) -> float:
         """Inlet temperature in K where the medium takes up `taken` W (negative: gives)."""

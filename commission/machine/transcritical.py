@@ -93,20 +93,24 @@ class GasCoolerCircuit(Circuit):
 
     def conductance(self, evaporating: float, outlet: float) -> float:
         """Conductance in W/K that the gas cooler would need."""
-        compression, _, _ = self.cycle(evaporating, outlet)
+        compression, _, heat = self.cycle(evaporating, outlet)
         p, end = self.high_side(evaporating, outlet)
-        sink = self.media.sink
+        sink = self.media.sink.settled(heat)
         return needed_conductance(
             self.machine.refrigerant, p, compression.flow, compression.discharge_enthalpy, end, sink
         )
 
+    def gap(self, evaporating: float, outlet: float) -> float:
+        """Conductance that is needed over the one there is, as a logarithm."""
+        flow = self.media.sink.settled(self.cycle(evaporating, outlet)[2]).volume_flow
+        return math.log(self.conductance(evaporating, outlet) / self.machine.condenser.conductance_at(flow))
+
     def solve(self, start: Balance | None) -> Balance:
         """Both unknowns, from a neighbouring balance or from the media."""
-        given = self.machine.condenser.conductance_at(self.media.sink.volume_flow)
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             _, taken, _ = self.cycle(x[0], x[1])
-            return self.source_gap(x[0], x[1], taken), math.log(self.conductance(x[0], x[1]) / given)
+            return self.source_gap(x[0], x[1], taken), self.gap(x[0], x[1])
 
         if start is not None:
             try:
@@ -117,10 +121,9 @@ class GasCoolerCircuit(Circuit):
 
     def gas_cooler_side(self, evaporating: float, start: Balance | None) -> Balance:
         """Only the gas cooler balances; the evaporating temperature is given."""
-        given = self.machine.condenser.conductance_at(self.media.sink.volume_flow)
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            return (math.log(self.conductance(evaporating, x[0]) / given),)
+            return (self.gap(evaporating, x[0]),)
 
         guess = start.unknowns[-1:] if start is not None else self.guess()[1:]
         solution = solve(gaps, guess, largest_step=5.0, evaluations=200)
@@ -136,6 +139,7 @@ class GasCoolerCircuit(Circuit):
         evaporating, outlet = solution.x
         compression, source, sink = self.cycle(evaporating, outlet)
         p = self.pressure(evaporating, outlet)
+        through = self.media.sink.settled(sink)
         critical = self.machine.refrigerant.p_critical
         condensing = self.machine.refrigerant.dew_temperature(p) if p < 0.95 * critical else None
         return Balance(
@@ -148,8 +152,8 @@ class GasCoolerCircuit(Circuit):
             source_drive=self.source_drive(evaporating, outlet),
             sink_drive=outlet,
             source_inlet_temperature=self.media.source.inlet(-source),
-            sink_inlet_temperature=self.media.sink.inlet(sink),
-            sink_outlet_temperature=self.media.sink.outlet(sink),
+            sink_inlet_temperature=through.inlet(sink),
+            sink_outlet_temperature=through.outlet(sink),
             share=1.0,
             sink_fan_share=1.0,
             sink_flow_share=1.0,

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
 from commission.machine import (
@@ -284,12 +284,31 @@ def media(facts: Facts, plan: Plan, conditions: Mapping[str, float]) -> Media:
     return Media(source, sink, around, share)
 
 
+ONCE_THROUGH = 12.0
+"""Temperature change in K from which a water heater is taken to set its flow for the outlet temperature."""
+
+
+def once_through(facts: Facts, conditions: Mapping[str, float]) -> bool:
+    """Whether the flow of the sink follows from its inlet and outlet: hot water heated in one pass."""
+    inlet = conditions.get("heat_sink_inlet_temperature")
+    outlet = conditions.get("heat_sink_outlet_temperature")
+    if facts.system.duty != "water_heating" or facts.sink_liquid is None or inlet is None or outlet is None:
+        return False
+    return outlet - inlet >= ONCE_THROUGH
+
+
 def _side(
     conditions: Mapping[str, float], side: str, flow: float, medium: Liquid | None, wet: float, pressure: float
 ) -> Stream:
     by_outlet = f"{side}_inlet_temperature" not in conditions
     temperature = conditions[f"{side}_{'outlet' if by_outlet else 'inlet'}_temperature"]
-    return stream(temperature, conditions.get(f"{side}_flow", flow), medium, wet, pressure, by_outlet)
+    one = stream(temperature, conditions.get(f"{side}_flow", flow), medium, wet, pressure, by_outlet)
+    outlet = conditions.get(f"{side}_outlet_temperature")
+    if by_outlet or outlet is None or medium is None:
+        return one
+    if outlet <= temperature:
+        raise NotCalculatedError("the medium would have to leave colder than it came")
+    return replace(one, outlet_wanted=outlet)
 
 
 def air_share(facts: Facts, a: Mapping[str, float]) -> float | None:

@@ -7,7 +7,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from commission.errors import InputError, Problem, nearest
-from commission.prediction.building import Plan
+from commission.prediction.building import Plan, once_through
 from commission.prediction.facts import Facts
 from commission.prediction.rated import Case
 from commission.quantities import NOMENCLATURE
@@ -35,8 +35,12 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     if facts.source_liquid is None:
         wet = case.conditions.get("heat_source_relative_humidity", plan.source_humidity)
         axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
-    for key, flow in (("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)):
-        axes.append(ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow))
+    flows = [("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)]
+    if once_through(facts, case.conditions):
+        flows.pop()
+        hot = case.conditions["heat_sink_outlet_temperature"]
+        axes.append(ConditionAxis("heat_sink_outlet_temperature", hot, hot - 15.0, hot + 15.0))
+    axes += [ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow) for key, flow in flows]
     speed = _speed_axis(facts, rated.speed)
     return {axis.key: axis for axis in (*axes, *speed)}
 
@@ -55,6 +59,8 @@ def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float
     """Key and rated value of one medium's temperature: of the design where it is stated, else of the rated point."""
     inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
     design = facts.system.design
+    if side == "heat_sink" and once_through(facts, case.conditions):
+        return inlet, case.conditions[inlet]
     first, second = (outlet, inlet) if outlet in case.conditions else (inlet, outlet)
     for key in (first, second):
         stated = getattr(design, key) if design is not None else None
@@ -109,7 +115,8 @@ def complete(
         raise InputError(*problems)
     whole: dict[str, float] = {}
     for key, axis in axes.items():
-        used = key if key in given or _other_end(key) not in given else _other_end(key)
+        other = _other_end(key)
+        used = other if other not in axes and other in given and key not in given else key
         whole[used] = given.get(used, axis.rated)
     filled = tuple(key for key in whole if key not in given)
     outside = tuple(

@@ -107,6 +107,9 @@ def _media(plan: Plan, media: Media, balance: Balance, found: Found) -> None:
     for key in ("heat_source", "heat_sink"):
         known = "outlet" if (media.source if key == "heat_source" else media.sink).by_outlet else "inlet"
         del found.values[f"{key}_{known}_temperature"]
+    if media.sink.outlet_wanted is not None:
+        del found.values["heat_sink_outlet_temperature"]
+        found.values["heat_sink_flow"] = media.sink.settled(balance.heat_to_sink).volume_flow
     _add(
         found,
         "carnot_cop",

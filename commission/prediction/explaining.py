@@ -37,6 +37,7 @@ METHOD: Mapping[str, str] = {
     "heating_cop": "cop",
     "carnot_cop": "carnot_cooling",
     "sensible_heat_ratio": "wet_coil",
+    "heat_sink_flow": "medium_flow",
     "heat_source_inlet_temperature": "medium_outlet",
     "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
@@ -73,6 +74,7 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "heating_cop": ("heating_capacity", "power_input"),
     "carnot_cop": ("heat_source_outlet_temperature", "heat_sink_outlet_temperature"),
     "sensible_heat_ratio": ("cooling_capacity", "evaporating_temperature"),
+    "heat_sink_flow": ("heating_capacity",),
     "heat_source_outlet_temperature": ("cooling_capacity",),
     "heat_sink_outlet_temperature": ("heating_capacity",),
     "heat_source_temperature_change": ("cooling_capacity",),
@@ -97,6 +99,7 @@ _MEDIA: Mapping[str, tuple[str, ...]] = {
         "heat_source_relative_humidity",
     ),
     "heat_sink_outlet_temperature": ("heat_sink_inlet_temperature", "heat_sink_flow"),
+    "heat_sink_flow": ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature"),
 }
 """Conditions that each value is calculated from."""
 

@@ -13,6 +13,7 @@ from commission.prediction.building import (
     Rated,
     flow_for,
     humidity,
+    once_through,
     stream,
 )
 from commission.prediction.compressors import estimate
@@ -189,6 +190,8 @@ def _one_temperature_each(facts: Facts, conditions: dict[str, float], stated: Ma
         inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
         if not (inlet in conditions and outlet in conditions):
             continue
+        if side == "heat_sink" and once_through(facts, conditions):
+            continue
         change = abs(conditions[inlet] - conditions[outlet])
         dry = medium is not None or side == "heat_sink"
         if f"{side}_flow" not in conditions and dry and change > 0 and heats[side] > 0:
@@ -284,6 +287,9 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
     sink_flow = case.conditions.get("heat_sink_flow")
     if sink_flow is None and facts.system.heat_sink.flow is not None:
         sink_flow = facts.system.heat_sink.flow * (1 + a["sink_flow_departure"])
+    if once_through(facts, case.conditions):
+        change = case.conditions["heat_sink_outlet_temperature"] - case.conditions["heat_sink_inlet_temperature"]
+        sink_flow = flow_for(heating, change, sink_temperature, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
     if sink_flow is None:
         change = a["sink_temperature_change"]
         sink_flow = flow_for(heating, change, sink_temperature, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
