@@ -16,7 +16,6 @@ if TYPE_CHECKING:
 
 GLYCOL = ("propylene glycol", "ethylene glycol")
 HYDROCARBONS = {"R-290", "R-600a", "R-1270", "R-170", "R-600"}
-EU = "EU 2024/573"
 
 
 def _freezer(facts: Facts) -> bool | None:
@@ -133,7 +132,8 @@ def _steps(facts: Facts) -> str | None:
 
 def _ladder(facts: Facts) -> str | None:
     order = limit_order(facts.loaded, facts.system_id, facts.figures)
-    shown = [f"{step.title} {facts.display.text(step.pressure, Kind.PRESSURE, 1)}" for step in order.steps]
+    steps = [step for step in order.steps if not step.title.endswith("low side")]
+    shown = [f"{step.title} {facts.display.text(step.pressure, Kind.PRESSURE, 1)}" for step in steps]
     return " < ".join(shown) or None
 
 
@@ -183,8 +183,7 @@ def _records(facts: Facts) -> str:
 
 
 def _greenhouse(facts: Facts) -> bool:
-    lines = label_text(EU, facts.substance, facts.system.charge, facts.system.sealed)
-    return lines[0].startswith("Contains fluorinated")
+    return facts.substance.listed
 
 
 def _known(name: str) -> Callable[[Facts, str], float | None]:

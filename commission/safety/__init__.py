@@ -7,11 +7,14 @@ from commission.safety.figure import TITLES as FIGURE_TITLES
 from commission.safety.figure import Figure, Figures
 from commission.safety.figures import safety_figures
 from commission.safety.formulas import nitrogen_pressure
+from commission.safety.hot_water import warm_volume_below_element
 from commission.safety.leaks import LeakDuty, label_text, leak_duty
 from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, limit_order
 from commission.safety.limits import ChargeLimit
+from commission.safety.market import MarketDate, market_dates
 from commission.safety.people import Hazards, Level, hazards
 from commission.safety.register import substance_of
+from commission.safety.relief import ReliefDuty, relief_duties
 from commission.safety.strength import strength_test_steps
 from commission.safety.substance import Substance
 
@@ -29,8 +32,10 @@ __all__ = [
     "LeakDuty",
     "Level",
     "LimitOrder",
+    "MarketDate",
     "OutOfOrder",
     "PressureStep",
+    "ReliefDuty",
     "SpaceCharge",
     "Substance",
     "charge_limits",
@@ -41,8 +46,11 @@ __all__ = [
     "label_text",
     "leak_duty",
     "limit_order",
+    "market_dates",
     "nitrogen_pressure",
+    "relief_duties",
     "safety_figures",
     "strength_test_steps",
     "substance_of",
+    "warm_volume_below_element",
 ]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from commission.errors import NotCalculatedError
 from commission.quantities import Input, Kind
@@ -64,6 +64,9 @@ def design_pressures(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, ou
         out.refuse("the hottest ambient is not stated: write plant.climate.summer_dry_bulb", *keys)
         return
     hottest = warmest[0]
+    if loaded.plant.plant.rules.safety == "ASHRAE 15":
+        _ashrae_15(loaded, system, fluid, table, hottest, out)
+        return
     limits = [read_value(t, Kind.TEMPERATURE) for t in table["ambient_at_most"]]
     column = next((i for i, limit in enumerate(limits) if hottest <= limit), None)
     if column is None:
@@ -78,6 +81,31 @@ def design_pressures(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, ou
         _design_figure(key, temperature, fluid, out, row["title"], table, row["marks"][column], hottest)
 
 
+def _ashrae_15(
+    loaded: LoadedPlant, system: System, fluid: Refrigerant, table: dict[str, Any], hottest: float, out: Collector
+) -> None:
+    """Design pressures of ASHRAE 15, 9.2.1 (from memory): low side at 80 °F; high side 30 °F above the summer air."""
+    rule = table["ashrae_15"]
+    source = {"document": rule["document"], "edition": rule["edition"]}
+    low = read_value(rule["low_side"], Kind.TEMPERATURE)
+    _design_figure("design_pressure_low_side", low, fluid, out, "low side", source, rule["mark"], hottest)
+    margin = read_value(rule["margin"], Kind.TEMPERATURE_DIFFERENCE)
+    if system.heat_sink.medium == "air":
+        high = max(hottest + margin, read_value(rule["air_cooled_at_least"], Kind.TEMPERATURE))
+        _design_figure(
+            "design_pressure_high_side", high, fluid, out, "high side, air-cooled", source, rule["mark"], hottest
+        )
+        return
+    wet_bulb = loaded.plant.plant.climate.summer_wet_bulb
+    if wet_bulb is None:
+        out.refuse(
+            "the summer wet bulb is not stated: write plant.climate.summer_wet_bulb", "design_pressure_high_side"
+        )
+        return
+    title = "high side, cooled by water or evaporation"
+    _design_figure("design_pressure_high_side", wet_bulb + margin, fluid, out, title, source, rule["mark"], wet_bulb)
+
+
 def _design_rows(loaded: LoadedPlant, system: System) -> tuple[str | None, str]:
     high: str | None = "high_side_air_cooled" if system.heat_sink.medium == "air" else None
     space = loaded.plant.spaces.get(system.heat_source.space or "")
@@ -87,7 +115,7 @@ def _design_rows(loaded: LoadedPlant, system: System) -> tuple[str | None, str]:
     return high, low
 
 
-def _water_cooled(system: System, fluid: Refrigerant, table: dict[str, object], out: Collector) -> None:
+def _water_cooled(system: System, fluid: Refrigerant, table: dict[str, Any], out: Collector) -> None:
     outlets = [
         p.heat_sink_outlet_temperature for p in system.rated_points if p.heat_sink_outlet_temperature is not None
     ]
@@ -98,7 +126,6 @@ def _water_cooled(system: System, fluid: Refrigerant, table: dict[str, object], 
         )
         return
     margin = table["water_cooled_margin"]
-    assert isinstance(margin, dict)
     temperature = max(outlets) + read_value(margin["value"], Kind.TEMPERATURE_DIFFERENCE)
     _design_figure(key, temperature, fluid, out, margin["says"], table, margin["mark"], max(outlets))
 
@@ -109,7 +136,7 @@ def _design_figure(
     fluid: Refrigerant,
     out: Collector,
     title: str,
-    table: dict[str, object],
+    table: dict[str, Any],
     mark: str,
     hottest: float,
 ) -> None:

@@ -10,7 +10,11 @@ from commission.safety.charge import SpaceCharge, charge_limits, lowest_limit, s
 from commission.safety.evacuation import evacuation_figures
 from commission.safety.facts import Fact, fact
 from commission.safety.figure import TITLES, Collector, Figure, Figures, fact_input
-from commission.safety.formulas import dispersal_charge
+from commission.safety.formulas import (
+    dispersal_charge,
+    emergency_ventilation_ashrae15,
+    emergency_ventilation_en378,
+)
 from commission.safety.leaks import leak_duty
 from commission.safety.limit_devices import limit_devices
 from commission.safety.register import substance_of
@@ -42,6 +46,7 @@ def safety_figures(loaded: LoadedPlant, system_id: str, model: SystemModel | Non
     limit_devices(loaded, system_id, fluid, model, out)
     evacuation_figures(loaded, system_id, substance, out)
     _charge(charge_limits(loaded, system_id, substance), substance, out)
+    _ventilation(loaded, system_id, out)
     _leaks(loaded, system_id, substance, out)
     for key in TITLES:
         if key not in out.found and key not in out.missing:
@@ -88,6 +93,35 @@ def _concentration(space: SpaceCharge | None, substance: Substance, out: Collect
             Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"),
         )
         out.add("leak_share_of_lfl", spread.value / lfl.value, "leak_share", inputs, rule, mark=lfl.mark, note=note)
+
+
+def _ventilation(loaded: LoadedPlant, system_id: str, out: Collector) -> None:
+    """Emergency ventilation where the condensing unit stands indoors; the largest charge of one system in that room."""
+    keys = ("emergency_ventilation", "emergency_ventilation_ashrae15")
+    room = loaded.system(system_id).spaces.condensing_unit
+    space = loaded.plant.spaces.get(room or "")
+    if space is None or space.outdoors:
+        out.refuse("no condensing unit stands indoors", *keys)
+        return
+    charges = {
+        key: system.charge
+        for key, system in loaded.plant.systems.items()
+        if system.spaces.condensing_unit == room and system.charge is not None
+    }
+    if not charges:
+        out.refuse("no charge is stated of the systems in the machinery room", *keys)
+        return
+    largest = max(charges, key=lambda key: charges[key])
+    inputs = (
+        Input(
+            "largest charge in the room", charges[largest], Kind.MASS, str(loaded.where(f"systems.{largest}.charge"))
+        ),
+    )
+    for key, rule, formula in (
+        (keys[0], fact("emergency_ventilation_en"), emergency_ventilation_en378),
+        (keys[1], fact("emergency_ventilation_ashrae"), emergency_ventilation_ashrae15),
+    ):
+        out.add(key, formula(charges[largest]), key, inputs, rule)
 
 
 def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Collector) -> None:

@@ -138,9 +138,7 @@ def label_text(law: str, substance: Substance, charge: float | None, sealed: boo
     """Lines of the label that goes beside the service ports (EU 2024/573 article 12; EN 378-2 marking)."""
     mass = "____ kg (write the weighed charge)" if charge is None else f"{charge:.2f} kg"
     lines = [f"Refrigerant {substance.name}, charge {mass}"]
-    annexes = load("leak_checks.yaml")[EU]
-    greenhouse = set(substance.components) & {*annexes["annex_i"]["components"], *annexes["annex_ii"]["components"]}
-    if law == EU and greenhouse:
+    if law == EU and substance.listed:
         lines.insert(0, "Contains fluorinated greenhouse gases")
         if substance.gwp is not None:
             tonnes = "____" if charge is None else f"{co2_equivalent(charge, substance.gwp.value) / 1000:.2f}"

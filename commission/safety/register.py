@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 from commission.errors import NotCalculatedError
+from commission.safety.facts import load
 from commission.safety.substance import Known, Substance
 
 if TYPE_CHECKING:
@@ -32,8 +33,15 @@ def substance_of(fluid: Refrigerant) -> Substance:
         atel_odl=_known(entry.atel_odl),
         rcl=_known(entry.rcl),
         gwp=_known(entry.gwp.get("eu573")),
+        listed=bool(set(entry.composition) & listed_gases()),
         liquid_only=bool(liquid_only is not None and liquid_only.value),
     )
+
+
+def listed_gases() -> frozenset[str]:
+    """Gases of annexes I and II of EU 2024/573."""
+    law = load("leak_checks.yaml")["EU 2024/573"]
+    return frozenset((*law["annex_i"]["components"], *law["annex_ii"]["components"]))
 
 
 def _known(figure: Any) -> Known | None:

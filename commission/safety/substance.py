@@ -38,6 +38,8 @@ class Substance:
     rcl: Known | None
     gwp: Known | None
     liquid_only: bool
+    listed: bool = False
+    """Holds a gas of annex I or II of EU 2024/573."""
 
     @property
     def toxicity(self) -> str:
