@@ -16,7 +16,7 @@ from commission.acceptance.guarantee import Terms, carry, terms_of
 from commission.acceptance.instruments import Reading
 from commission.acceptance.judgement import GuaranteeVerdict, verdict
 from commission.acceptance.routes import Refusal
-from commission.quantities import NOMENCLATURE, Explained
+from commission.quantities import NOMENCLATURE, Explained, Kind
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -121,9 +121,9 @@ def _readings(
 
 
 def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model: SystemModel) -> list[Reading]:
-    """Inlet temperatures are always read: where no instrument fits, with an assumed one, which is warned of."""
+    """Temperatures of the media are always read: where no instrument fits, with an assumed one, which is warned of."""
     have = {r.key for r in readings}
-    more = [k for k in model.condition_axes if k.endswith("inlet_temperature") and k not in have]
+    more = [k for k in model.condition_axes if NOMENCLATURE[k].kind is Kind.TEMPERATURE and k not in have]
     return [*readings, *(Reading(k, conditions[k]) for k in more)]
 
 

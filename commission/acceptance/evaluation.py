@@ -13,6 +13,7 @@ from commission.acceptance.closure import Closure, closures
 from commission.acceptance.derived import Derived, derive, less, ratio, unbalance
 from commission.acceptance.expectation import Deviation, Expectation, deviation, expect
 from commission.acceptance.impossible import Impossible, impossible
+from commission.acceptance.inferring import SPEED, infer_speed
 from commission.acceptance.instruments import Reading, measure
 from commission.acceptance.route_inputs import RouteInputs, from_sheet, live
 from commission.acceptance.routes import (
@@ -27,7 +28,7 @@ from commission.acceptance.routes import (
     liquid_side,
 )
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE
+from commission.quantities import NOMENCLATURE, Kind
 
 if TYPE_CHECKING:
     from commission.acceptance.sheet import TestSheet
@@ -86,6 +87,8 @@ class Evaluation:
         if key == "power_input":
             if key not in self.measured:
                 raise NotCalculatedError("it needs a reading of power input")
+            if key in self.not_judged and SPEED in self.conditions:
+                raise NotCalculatedError(self.not_judged[key])
             return self.measured[key], "electric meter"
         if key in ("cooling_cop", "heating_cop"):
             capacity = self.capacity(key.replace("cop", "capacity"), None if route == "electric meter" else route)
@@ -121,7 +124,12 @@ def evaluate(
     measured = _measure_all(loaded, [*asked, *read], on, not_judged)
     used = {k: measured[k] for k in model.condition_axes if k in measured}
     warnings = list(dict.fromkeys(w for m in measured.values() for w in m.budget.warnings))
-    prediction, why = _predict(model, used)
+    prediction, why, spent = _predict(model, used, measured)
+    not_judged.update(spent)
+    warnings += [
+        f"{NOMENCLATURE[SPEED].label.lower()} was not read: inferred from {NOMENCLATURE[k].label.lower()}"
+        for k in spent
+    ]
     if prediction is not None:
         warnings += prediction.warnings
         warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
@@ -135,7 +143,9 @@ def evaluate(
     have.update({k: d.measured for k, d in derived.items()})
     expectations = _expectations(model, used, sheet, prediction, why, not_judged)
     deviations = tuple(
-        deviation(have[k], expectations[k]) for k in NOMENCLATURE if k in have and k in expectations and k not in used
+        deviation(have[k], expectations[k])
+        for k in NOMENCLATURE
+        if k in have and k in expectations and k not in used and k not in spent
     )
     for key in have:
         if key not in expectations and key not in used and key not in not_judged and key != "barometric_pressure":
@@ -170,15 +180,25 @@ def _measure_all(
     return found
 
 
-def _predict(model: SystemModel, used: Mapping[str, Measured]) -> tuple[Prediction | None, str | None]:
-    """The prediction at the measured condition, or why there is none."""
+def _predict(
+    model: SystemModel, used: dict[str, Measured], measured: Mapping[str, Measured]
+) -> tuple[Prediction | None, str | None, dict[str, str]]:
+    """The prediction at the measured condition, or why there is none, and the reading spent on an unknown speed.
+
+    A speed that was inferred is added to `used`.
+    """
     for key in model.condition_axes:
-        if key.endswith("inlet_temperature") and key not in used:
-            return None, f"{NOMENCLATURE[key].label.lower()} was not read: without it nothing can be expected"
+        if NOMENCLATURE[key].kind is Kind.TEMPERATURE and key not in used:
+            return None, f"{NOMENCLATURE[key].label.lower()} was not read: without it nothing can be expected", {}
+    spent: dict[str, str] = {}
     try:
-        return model.predict({k: m.value for k, m in used.items()}), None
+        if SPEED in model.condition_axes and SPEED not in used:
+            inferred = infer_speed(model, used, measured)
+            used[SPEED] = inferred.speed
+            spent[inferred.spent] = "spent on the compressor speed, which was not read and is inferred from it"
+        return model.predict({k: m.value for k, m in used.items()}), None, spent
     except NotCalculatedError as error:
-        return None, str(error)
+        return None, str(error), {}
 
 
 def _expectations(

@@ -250,7 +250,7 @@ def _route_instruments(
     system = loaded.system(model.system_id)
     expected = model.predict(dict(at)).expected
     route = terms.route or ("electric meter" if terms.quantity == "power_input" else "compressor heat balance")
-    keys = [*_ROUTE_READINGS[route], *(k for k in at if k.endswith("inlet_temperature"))]
+    keys = [*_ROUTE_READINGS[route], *(k for k in at if NOMENCLATURE[k].kind is Kind.TEMPERATURE)]
     if route in ("liquid side", "air side"):
         side = "source" if terms.quantity.startswith("cooling") else "sink"
         keys += [f"heat_{side}_outlet_temperature", f"heat_{side}_flow"]

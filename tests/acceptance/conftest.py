@@ -121,3 +121,23 @@ def cold_room_model(cold_room: LoadedPlant) -> SystemModel:
 def chiller_model(chiller: LoadedPlant) -> SystemModel:
     """The fitted chiller."""
     return fit(chiller, "chiller")
+
+
+VARIABLE = (
+    CHILLER.replace("compressor: {type: scroll}", "compressor: {type: scroll, drive: variable speed}")
+    .replace("cooling_capacity: ", "compressor_speed: 3000 rpm, cooling_capacity: ")
+    .replace("quantity: compressor_speed: 3000 rpm, cooling_capacity", "quantity: cooling_capacity")
+)
+"""The chiller with a variable drive, rated at 3000 rpm."""
+
+
+@pytest.fixture(scope="session")
+def variable(tmp_path_factory: pytest.TempPathFactory) -> LoadedPlant:
+    """The chiller with a variable drive as read from its file."""
+    return write_plant(tmp_path_factory.mktemp("variable"), VARIABLE)
+
+
+@pytest.fixture(scope="session")
+def variable_model(variable: LoadedPlant) -> SystemModel:
+    """The fitted chiller with a variable drive."""
+    return fit(variable, "chiller")
