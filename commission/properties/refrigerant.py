@@ -13,7 +13,7 @@ from functools import cache, cached_property
 from typing import TYPE_CHECKING
 
 from commission.properties.errors import PropertyRangeError, bar, celsius
-from commission.properties.saturation import EDGE, GAS_CONSTANT, Saturation
+from commission.properties.saturation import EDGE, EDGE_PRESSURE, GAS_CONSTANT, Saturation
 from commission.properties.states import SaturationState, Slopes, State
 
 if TYPE_CHECKING:
@@ -102,12 +102,7 @@ class Refrigerant(Saturation):
             self._beyond.need(p)
             self._beyond.need_vapour(T, p)
             return _state(self._beyond.at(T, p))
-        T_dew, start = self._vapour_start(T, p)
-        if T_dew * (1 - EDGE) > T:
-            raise PropertyRangeError(
-                self.name, f"{celsius(T)} is below the dew point {celsius(T_dew)} at {bar(p)}: not vapour alone"
-            )
-        return _state(self._equation.density(max(T, T_dew), p, start))
+        return _state(self._equation.density(T, p, self._vapour_start(T, p)))
 
     def liquid(self, T: float, p: float) -> State:
         """Subcooled liquid at `T` (K) and `p` (Pa).
@@ -154,17 +149,26 @@ class Refrigerant(Saturation):
             drho_dp=1 / point.p_rho,
         )
 
-    def _vapour_start(self, T: float, p: float) -> tuple[float, float]:
-        """Dew temperature at `p` (0 where `p` lies below the line) and a density to start from at (T, p)."""
+    def _vapour_start(self, T: float, p: float) -> float:
+        """A density (kg/m3) to start from at (T, p): non-ideality in proportion to pressure, as by a second virial
+        coefficient, from the dew point at `T`, or beyond the line from its end.
+
+        Raises:
+            PropertyRangeError: (T, p) lies below the dew line, or there is no such pressure.
+        """
         if not p > 0:
             raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
+        T_line = min(T, self.T_high)
+        ln_p, _, _, ln_rho = self._dew.row(T_line)
+        p_line = math.exp(ln_p)
+        if self.T_high >= T and p > p_line * (1 + EDGE_PRESSURE):
+            dew = celsius(self._dew.temperature(p))
+            raise PropertyRangeError(
+                self.name, f"{celsius(T)} is below the dew point {dew} at {bar(p)}: not vapour alone"
+            )
+        gap = 1 - p_line * self.molar_mass / (GAS_CONSTANT * T_line * math.exp(ln_rho))
         ideal = p * self.molar_mass / (GAS_CONSTANT * T)
-        if p < self.p_dew_low:
-            return 0.0, ideal
-        T_dew = self._dew.temperature(p)
-        rho_dew = math.exp(self._dew.row(T_dew)[3])
-        gap = 1 - p * self.molar_mass / (GAS_CONSTANT * T_dew * rho_dew)
-        return T_dew, ideal / (1 - gap * (T_dew / max(T, T_dew)) ** 3)
+        return ideal / (1 - gap * min(1.0, p / p_line) * (T_line / T) ** 3)
 
     def _need_gas_temperature(self, T: float) -> None:
         if not self.T_low <= T <= self.T_max:
@@ -264,7 +268,9 @@ class Refrigerant(Saturation):
         cp = self._equation.at(rho, T_dew).cp
         T = T_dew * math.exp((value - s) / cp) if name == "s" else T_dew + (value - h) / cp
         T = min(T, 1.2 * self.T_max)
-        return _state(self._held(self._equation.solve(p, name, value, rho * T_dew / T, T)))
+        gap = 1 - p * self.molar_mass / (GAS_CONSTANT * T_dew * rho)
+        start = p * self.molar_mass / (GAS_CONSTANT * T * (1 - gap * (T_dew / T) ** 3))
+        return _state(self._held(self._equation.solve(p, name, value, start, T)))
 
     def _wet_at_entropy(self, p: float, s: float, wet: str) -> State:
         isobar = self._wet(p)

@@ -14,6 +14,7 @@ if TYPE_CHECKING:
 NEAR_CRITICAL = 0.97  # of the critical temperature: above, small errors of a model become large ones of its pressures
 GAS_CONSTANT = 8.314462618  # J/(mol K), CODATA 2018
 EDGE = 1e-8  # relative; a state this close to a line counts as on it, since lines are exact to about this
+EDGE_PRESSURE = 20 * EDGE  # the same in pressure, which moves at most twenty times as much in relative terms
 
 
 class Saturation:
