@@ -107,6 +107,26 @@ Voltage = Annotated[float, *_quantity(Kind.VOLTAGE, positive=True)]
 Speed = Annotated[float, *_quantity(Kind.SPEED, positive=True)]
 Duration = Annotated[float, *_quantity(Kind.DURATION, positive=True)]
 Ratio = Annotated[float, *_quantity(Kind.RATIO, "0 %", "100 %")]
+
+
+def _fraction(text: str) -> float:
+    """A share that the trade writes as a plain number (0.85) or in per cent (85 %)."""
+    try:
+        value = parse(text, Kind.NUMBER)
+    except QuantityError:
+        return _within(Kind.RATIO, "0 %", "100 %", False)(text)
+    if not 0.0 <= value <= 1.0:
+        raise _out_of_range("this is outside what can be", f"0 to 1 as a plain number, or {value:g} % if you mean it")
+    return value
+
+
+_FRACTION = "a share from 0 to 1 as a plain number, or in per cent, for example 0.85 or 85 %"
+Fraction = Annotated[
+    float,
+    BeforeValidator(_text_only(Kind.RATIO, _fraction)),
+    WithJsonSchema({"type": ["string", "number"], "description": _FRACTION}),
+    Meaning(Kind.RATIO, _FRACTION),
+]
 Number = Annotated[float, *_quantity(Kind.NUMBER)]
 PositiveNumber = Annotated[float, *_quantity(Kind.NUMBER, positive=True)]
 SoundLevel = Annotated[float, *_quantity(Kind.SOUND_LEVEL, "0 dB(A)", "150 dB(A)")]

@@ -5,8 +5,9 @@ import time
 from pathlib import Path
 
 import pytest
+import yaml
 
-from commission.description import DescriptionError, Position, read_yaml
+from commission.description import DescriptionError, Position, read_yaml, reading
 from commission.description.reading import MAX_BYTES, MAX_DEPTH
 from commission.errors import Problem
 
@@ -130,6 +131,17 @@ def test_the_largest_files_take_no_longer_than_a_breath() -> None:
     for text in shapes:
         assert all(p.line for p in problems_of(text))
     assert time.process_time() - started < 2.0 * len(shapes)
+
+
+def test_the_slow_parser_reads_the_same(example_folder: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Where PyYAML has no compiled parser its own one gives the same data, places and refusals."""
+    good = (example_folder / "plant.yaml").read_text(encoding="utf-8")
+    fast = read_yaml(good)
+    refused = [problems_of(text)[-1].place for text in ("a: &x 1\n", "a: 1\na: !y 2\n", "a: {b: [*x]}\n")]
+    monkeypatch.setattr(reading, "Loader", yaml.SafeLoader)
+    assert read_yaml(good).data == fast.data
+    assert read_yaml(good).positions == fast.positions
+    assert [problems_of(text)[-1].place for text in ("a: &x 1\n", "a: 1\na: !y 2\n", "a: {b: [*x]}\n")] == refused
 
 
 def test_random_bytes_are_read_or_refused(tmp_path: Path) -> None:

@@ -75,6 +75,8 @@ def test_missing_key_takes_the_place_of_what_lacks_it(problems: Problems) -> Non
         ({"controls": {"room_differential": "2 °C"}}, "write 2 K", None),
         ({"controls": {"weather_curve": {"points": [{"outdoor": "0 °C", "flow": "40 °C"}]}}}, "at least 2", None),
         ({"compressor": {"volumetric_efficiency": "120 %"}}, "outside what can be", None),
+        ({"compressor": {"power_factor": "85"}}, "outside what can be", None),
+        ({"compressor": {"power_factor": "0.85 kW"}}, "unit of power", None),
         ({"compressor": {"polynomial": {"temperature_unit": "°C", "power": ["1"] * 9}}}, "at least 10", None),
         ({"rated_points": "none"}, "a list is wanted", None),
         ({"rated_points": ["x"]}, "keys with values", None),
@@ -103,6 +105,15 @@ def test_ids_are_plain_words(problems: Problems, identity: str) -> None:
 def test_ids_in_other_scripts_are_welcome(load: Callable[..., Any]) -> None:
     """Names of rooms and machines are written in the plant's own language."""
     assert load(lambda d: d["systems"].update({"Kühlraum 1.2": d["systems"].pop("one")})).system("Kühlraum 1.2")
+
+
+def test_shares_of_the_trade_are_plain_numbers_or_per_cent(load: Callable[..., Any]) -> None:
+    """A power factor is written 0.85 and an efficiency 62 %; both are shares."""
+    change = {"power_factor": "0.85", "volumetric_efficiency": "0,8", "isentropic_efficiency": "62 %"}
+    compressor = load(lambda d: one(d).update(compressor=change)).system("one").compressor
+    assert compressor.power_factor == pytest.approx(0.85)
+    assert compressor.volumetric_efficiency == pytest.approx(0.8)
+    assert compressor.isentropic_efficiency == pytest.approx(0.62)
 
 
 def test_all_faults_in_one_run_in_the_order_of_the_file(problems: Problems) -> None:

@@ -12,6 +12,7 @@ from commission.description.fields import (
     Count,
     Current,
     Duration,
+    Fraction,
     GaugeOrAbsolute,
     Length,
     MassFlow,
@@ -99,12 +100,12 @@ class Compressor(Part):
     )
     minimum_speed: Speed | None = Field(None, description="lowest shaft speed of the drive")
     maximum_speed: Speed | None = Field(None, description="highest shaft speed of the drive")
-    volumetric_efficiency: Ratio | None = Field(None, description="at the rated condition")
-    isentropic_efficiency: Ratio | None = Field(None, description="overall, electric, at the rated condition")
+    volumetric_efficiency: Fraction | None = Field(None, description="at the rated condition")
+    isentropic_efficiency: Fraction | None = Field(None, description="overall, electric, at the rated condition")
     polynomial: Polynomial | None = Field(None, description="ten-coefficient polynomials (EN 12900, AHRI 540)")
     table: CompressorTable | None = Field(None, description="supplier's table of the compressor alone")
     envelope: tuple[EnvelopeCorner, ...] = Field((), description="corners of the application envelope, in order")
-    power_factor: Ratio | None = Field(None, description="cosine phi at the rated condition")
+    power_factor: Fraction | None = Field(None, description="cosine phi at the rated condition")
     crankcase_heater: Power | None = Field(None, description="electric power of the crankcase heater")
     oil: str | None = Field(None, description="oil and viscosity")
     oil_charge: Volume | None = Field(None, description="oil charge")
@@ -196,4 +197,4 @@ class Lines(Part):
 class SuctionExchanger(Part):
     """An exchanger between suction gas and liquid."""
 
-    effectiveness: Ratio | None = Field(None, description="at the rated condition")
+    effectiveness: Fraction | None = Field(None, description="at the rated condition")

@@ -9,6 +9,7 @@ from pydantic import Field
 from commission.description.fields import (
     Capacity,
     Current,
+    Fraction,
     PositiveNumber,
     Ratio,
     Speed,
@@ -51,7 +52,7 @@ class RatedPoint(Conditions):
     power_input: Capacity | None = Field(None, description=_means("power_input"))
     cooling_cop: PositiveNumber | None = Field(None, description="COP of cooling, where the power is not stated")
     heating_cop: PositiveNumber | None = Field(None, description="COP of heating, where the power is not stated")
-    sensible_heat_ratio: Ratio | None = Field(None, description=_means("sensible_heat_ratio"))
+    sensible_heat_ratio: Fraction | None = Field(None, description=_means("sensible_heat_ratio"))
     evaporating_temperature: Temperature | None = Field(None, description=_means("evaporating_temperature"))
     condensing_temperature: Temperature | None = Field(None, description=_means("condensing_temperature"))
     current: Current | None = Field(None, description=_means("current"))
