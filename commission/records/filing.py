@@ -32,7 +32,7 @@ if TYPE_CHECKING:
     from commission.prediction import SystemModel
 
 ATTACHMENTS = "attachments"
-_NUMBER = re.compile(rb"^  - number: (\d{1,9})$", re.MULTILINE)
+_NUMBER = re.compile(rb"^  - \{?number: (\d{1,9})\b", re.MULTILINE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -194,7 +194,7 @@ def _judged(
 
 def _filed_before(folder: Path, record: Record) -> Path | None:
     """The filed record that was handed in as the very same file, if there is one."""
-    line = f"    handed_in: {record.digest}\n".encode()
+    line = f"handed_in: {record.digest}".encode()
     return next((p for p in sorted(folder.glob("*.yaml")) if line in p.read_bytes()), None)
 
 

@@ -147,13 +147,17 @@ def frozen_deviations(judgement: Judgement) -> dict[str, FrozenDeviation]:
 
 
 def _split(budget: Budget) -> dict[str, Any]:
-    """The budget in two: signed shares of the model by cause, and all the rest as one standard uncertainty."""
+    """The budget in two: signed shares of the model by cause, and all the rest as one standard uncertainty.
+
+    A share of the model below a thousandth of the whole goes with the rest: a hundred of them would not show.
+    """
     shares: dict[str, float] = {}
     rest: list[float] = []
+    least = 1e-3 * budget.standard
     for group in budget.groups():
         total = math.fsum(c.value for c in group)
         cause = group[0].cause
-        if cause.startswith(MODEL):
+        if cause.startswith(MODEL) and abs(total) >= least:
             shares[cause.removeprefix(MODEL)] = total
         else:
             rest.append(total)

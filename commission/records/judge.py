@@ -11,6 +11,7 @@ from commission.errors import NotCalculatedError
 from commission.errors import nearest as nearest_word
 from commission.records.disk import digest_of_file
 from commission.records.read import RecordError, records_folder
+from commission.records.readings import UNBALANCE_OF
 from commission.records.record import Record, SiteReading
 
 if TYPE_CHECKING:
@@ -50,6 +51,8 @@ def judged_by(
 ) -> Judgement:
     """The judgement by this sheet, or by the description as it stands where there is none.
 
+    An unbalance is kept in the record, but no model expects one.
+
     Raises:
         NotCalculatedError: the system cannot be calculated.
     """
@@ -60,7 +63,7 @@ def judged_by(
         loaded,
         fit(loaded, record.system) if model is None else model,
         [site_reading(r) for r in record.conditions.values()],
-        [site_reading(r) for r in record.readings.values()],
+        [site_reading(r) for k, r in record.readings.items() if k not in UNBALANCE_OF.values()],
         record.mode,
         sheet,
         on=record.started.date(),

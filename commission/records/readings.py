@@ -99,7 +99,7 @@ class ReadingsReader:
         return SiteReading(
             key,
             value,
-            measured.value if measured.value is not None else f"mean of {', '.join(written)}",
+            measured.value or f"mean of {len(written)} {'samples' if measured.samples else 'phases'}",
             instrument,
             measured.where,
             tuple(v for v in several["samples"] if v is not None),

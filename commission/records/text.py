@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import textwrap
 from collections.abc import Mapping
 from typing import Any
 
@@ -13,15 +14,20 @@ _SEAL = "  seal: "
 
 
 def dump(data: Mapping[str, Any]) -> str:
-    """`data` as YAML in its own order, one value per line, readable by a person and by any YAML reader."""
+    """`data` as YAML in its own order, one line for each key and for short mappings below it."""
     import yaml
 
-    text: str = yaml.safe_dump(plain(data), sort_keys=False, allow_unicode=True, width=110, default_flow_style=False)
-    return text
+    lines = []
+    for key, value in plain(data).items():
+        flow = None if isinstance(value, dict | list) else False
+        lines.append(
+            yaml.safe_dump({key: value}, sort_keys=False, allow_unicode=True, width=110, default_flow_style=flow)
+        )
+    return "".join(lines)
 
 
 def plain(value: Any) -> Any:
-    """Mappings, lists and scalars only; empty parts left out; numbers to twelve digits, which no instrument reaches.
+    """Mappings, lists and scalars only; empty parts left out; numbers to eight digits, which no instrument reaches.
 
     Raises:
         ValueError: a number is not finite (a fault of the package: nothing that cannot be calculated gets here).
@@ -35,7 +41,7 @@ def plain(value: Any) -> Any:
     if isinstance(value, float):
         if not math.isfinite(value):
             raise ValueError(f"{value} cannot be filed")
-        return float(f"{value:.12g}")
+        return float(f"{value:.8g}")
     return value.isoformat()
 
 
@@ -46,7 +52,7 @@ def with_filed_block(written: str, data: Mapping[str, Any], filed: Mapping[str, 
     braces, or closed with an end mark) it is written anew from `data`, what was read in it.
     """
     body = written.replace("\r\n", "\n").replace("\r", "\n").rstrip("\n") + "\n"
-    block = dump({FILED_KEY: filed})
+    block = f"{FILED_KEY}:\n{textwrap.indent(dump(filed), '  ')}"
     if not _can_be_extended(body, data, block):
         body = dump(data)
     unsealed = f"{body}\n{block}"
