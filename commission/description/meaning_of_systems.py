@@ -11,8 +11,9 @@ from commission.description.looked import Looked
 from commission.description.model import Compressor, Conditions, Guarantee, Medium, System
 from commission.description.positions import KeyPath
 from commission.errors import InputError, Problem, nearest
-from commission.quantities import NOMENCLATURE, parse
+from commission.quantities import NOMENCLATURE, Kind, Quantity, parse
 
+_HEAT = ("cooling_capacity", "net_cooling_capacity", "heating_capacity")
 CheckOfASystem = Callable[[Looked, KeyPath, System], Iterator[Problem]]
 
 
@@ -79,11 +80,19 @@ def _measured_with(looked: Looked, at: KeyPath, system: System) -> Iterator[Prob
         yield from looked.reference(path, identity, instruments, "instrument")
         if identity in instruments:
             measures = instruments[identity].measures
-            if MEASURED[measures][0] is not quantity.kind:
-                fit = [one for one, i in instruments.items() if MEASURED[i.measures][0] is quantity.kind]
-                message = f"this instrument measures {measures}; {key} is a {quantity.kind.value}"
+            if not _fits(measures, quantity):
+                fit = [one for one, i in instruments.items() if _fits(i.measures, quantity)]
+                what = "heat" if quantity.key in _HEAT else f"a {quantity.kind.value}"
+                message = f"this instrument measures {measures}; {key} is {what}"
                 allowed = ", ".join(fit) or "an instrument for it is not described yet"
                 yield looked.positions.problem(path, message, allowed=allowed)
+
+
+def _fits(measures: str, quantity: Quantity) -> bool:
+    """An instrument reads quantities of its own kind; a meter of electric power reads no heat, nor the other way."""
+    if quantity.kind is Kind.POWER and (measures == "heat") is not (quantity.key in _HEAT):
+        return False
+    return MEASURED[measures][0] is quantity.kind
 
 
 def _conditions(looked: Looked, at: KeyPath, system: System) -> Iterator[Problem]:

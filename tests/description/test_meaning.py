@@ -173,6 +173,14 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
         "systems.one.measured_with.suction_temperature",
         "this instrument measures pressure",
     ),
+    "heat measured with a meter of electric power": (
+        lambda d: (
+            d["instruments"].update({"power meter": {"measures": "electric power"}}),
+            one(d).update(measured_with={"cooling_capacity": "power meter"}),
+        ),
+        "systems.one.measured_with.cooling_capacity",
+        "cooling_capacity is heat",
+    ),
     "rated point without result": (
         lambda d: [point(d).pop(k) for k in ("cooling_capacity", "power_input")],
         "systems.one.rated_points.0",
