@@ -85,19 +85,26 @@ def needed_conductance(
     """
     heat = flow * (inlet - outlet.h)
     water = sink.inlet(heat)
-    total, last = 0.0, _open(outlet.T - water)
+    last = outlet.T - water
+    total = _barrier(last)
     for n in range(1, NODES + 1):
         share = n / NODES
         gas = refrigerant.throttled(pressure, outlet.h + share * (inlet - outlet.h)).T
-        difference = _open(gas - water - share * heat / sink.capacity_rate)
-        total += heat / NODES / _log_mean(last, difference)
+        difference = gas - water - share * heat / sink.capacity_rate
+        total += 1 / _log_mean(_open(last), _open(difference)) + _barrier(difference)
         last = difference
-    return total
+    return total * heat / NODES
 
 
 def _open(difference: float) -> float:
     """A temperature difference kept above zero, smoothly."""
     return 0.5 * (difference + math.hypot(difference, CROSSING))
+
+
+def _barrier(difference: float) -> float:
+    """What a difference below `CROSSING` adds to the inverse of the mean difference, in 1/K: without bound beyond zero,
+    where the logarithmic mean alone would let a small crossing pass."""
+    return max(CROSSING - difference, 0.0) ** 2 / CROSSING**3
 
 
 def _log_mean(a: float, b: float) -> float:
