@@ -113,10 +113,11 @@ def compressor_heat_balance(
     """Cooling or heating capacity from refrigerant states and the power of the compressor.
 
     Flow = P (1 - f) / (h2 - h1); cooling capacity = flow (h_e - h4); heating capacity = flow (h2 - h4), with h1 at the
-    suction port, h2 at the discharge port, h4 of the liquid (saturated liquid at its temperature: its pressure hardly
-    counts), h_e at the evaporator outlet: the suction temperature less the warming `line_gain` of the suction line in
-    K (none where not given), at the pressure of the evaporating temperature where that is among the readings. P is the
-    electric power of a motor cooled by the suction gas, f the share lost through the shell (Nordtest NT VVS 115, 116).
+    suction port, h2 at the discharge port, h4 of the liquid at the discharge pressure (saturated where it is not
+    subcooled there), h_e at the evaporator outlet: the suction temperature less the warming `line_gain` of the suction
+    line in K (none where not given), at the pressure of the evaporating temperature where that is among the readings.
+    P is the electric power of a motor cooled by the suction gas, f the share lost through the shell (Nordtest NT VVS
+    115, 116).
 
     Raises:
         NotCalculatedError: a reading is missing, or the balance does not hold here (the reason is said).
@@ -177,9 +178,10 @@ def compressor_heat_balance(
 
 
 def _liquid_enthalpy(refrigerant: Refrigerant, temperature: float, pressure: float) -> float:
-    if temperature < refrigerant.T_critical - 1.0:
+    """Enthalpy of the liquid at its pressure, which counts for carbon dioxide; on the bubble line where it is there."""
+    if temperature < refrigerant.T_critical - 1.0 and pressure <= refrigerant.bubble(temperature).p:
         return float(refrigerant.bubble(temperature).h)
-    return float(refrigerant.vapour(temperature, pressure).h)  # gas cooler of a transcritical cycle
+    return float(refrigerant.liquid(temperature, pressure).h)
 
 
 def _refuse_wet_suction(readings: Mapping[str, Measured]) -> None:

@@ -141,3 +141,26 @@ def variable(tmp_path_factory: pytest.TempPathFactory) -> LoadedPlant:
 def variable_model(variable: LoadedPlant) -> SystemModel:
     """The fitted chiller with a variable drive."""
     return fit(variable, "chiller")
+
+
+CARBON_DIOXIDE = """
+plant: {name: Test water heater}
+instruments:
+  low gauge: {measures: pressure, from: 0 bar g, to: 60 bar g, class: EN 837-1 class 1.0, calibrated_until: 2027-03-31}
+  high gauge:
+    {measures: pressure, from: 0 bar g, to: 160 bar g, class: EN 837-1 class 1.0, calibrated_until: 2027-03-31}
+  probe: {measures: temperature, class: IEC 60751 A, resolution: 0.1 K, calibrated_until: 2027-02-28}
+  flow meter: {measures: volume flow, to: 1 m3/h, class: EN 1434 class 2, calibrated_until: 2028-01-31}
+  power meter: {measures: electric power, class: MID class B, calibrated_until: 2028-01-31}
+systems:
+  heater:
+    duty: water_heating
+    refrigerant: R-744
+    heat_source: {medium: air, flow: 3000 m3/h, relative_humidity: 70 %}
+    heat_sink: {medium: water}
+    compressor: {type: reciprocating}
+    rated_points:
+      - {heat_source_inlet_temperature: 7 °C, heat_sink_inlet_temperature: 12 °C, heat_sink_outlet_temperature: 60 °C,
+         heating_capacity: 10 kW, power_input: 2.7 kW, includes: [compressor, evaporator fan]}
+"""
+"""A carbon dioxide water heater, transcritical, rated by the outlet of its sink."""

@@ -12,7 +12,7 @@ from commission.acceptance import Judgement, Reading, judge, make_sheet
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel, fit
-from tests.acceptance.conftest import CHILLER, COLD_ROOM, write_plant
+from tests.acceptance.conftest import CARBON_DIOXIDE, CHILLER, COLD_ROOM, write_plant
 from tests.acceptance.visits import visit
 
 SINK, SOURCE = "heat_sink_inlet_temperature", "heat_source_inlet_temperature"
@@ -234,3 +234,23 @@ def test_another_boundary_is_no_verdict(cold_room_model: SystemModel, tmp_path: 
     same = write_plant(tmp_path / "same", text.replace("[compressor]}", "[condenser fan, compressor]}"))
     agreed = judge(same, cold_room_model, *visit(same, cold_room_model), "test", since_start=3600.0)
     assert agreed.guarantees[1].outcome == "conforming"
+
+
+def test_carbon_dioxide_above_its_critical_point(tmp_path: Path) -> None:
+    """A transcritical water heater, rated by its outlet: no condensing temperature is made up, the heat balance takes
+    the gas cooler's outlet at its pressure, and a plant as designed deviates from nothing."""
+    plant = write_plant(tmp_path / "co2", CARBON_DIOXIDE)
+    model = fit(plant, "heater")
+    found = judge(plant, model, *visit(plant, model), "trim", on=DAY)
+    assert not {"condensing_temperature", "subcooling"} & set(found.derived)
+    balance = next(
+        r for r in found.routes if r.route == "compressor heat balance" and r.measured.key == "cooling_capacity"
+    )
+    expected = model.predict().expected["cooling_capacity"].value
+    assert balance.measured.value == pytest.approx(expected, rel=0.01)
+    assert [d.key for d in found.deviations if d.ratio > 0.2] == []
+    assert found.impossible == ()
+    outlet = [r for r in visit(plant, model)[0] if r.key != "heat_sink_outlet_temperature"]
+    blind = judge(plant, model, outlet, visit(plant, model)[1], "trim", on=DAY)
+    assert blind.deviations == ()
+    assert "heat sink outlet temperature was not read" in blind.not_judged["suction_pressure"]
