@@ -7,7 +7,7 @@ from commission.machine.gas_cooler import GasCoolerPressure, best_pressure, liao
 from commission.machine.head_pressure import HeadPressure
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
-from commission.machine.single_stage import FREE, HELD, LOWEST, SingleStage
+from commission.machine.single_stage import FREE, HELD, LIMITED, LOWEST, REGULATED, SingleStage
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
 from commission.machine.transcritical import Transcritical
@@ -16,7 +16,9 @@ from commission.machine.wet_air import LeavingAir, coil_conductance, leaving_air
 __all__ = [
     "FREE",
     "HELD",
+    "LIMITED",
     "LOWEST",
+    "REGULATED",
     "Balance",
     "Compression",
     "Compressor",

@@ -27,7 +27,10 @@ class SuctionLine:
 
 @dataclass(frozen=True, slots=True)
 class Parts:
-    """The parameters of a machine; temperature differences in K. A fault is another value of one of them."""
+    """The parameters of a machine; temperature differences in K. A fault is another value of one of them.
+
+    `suction_regulator` is the pressure (Pa) that a crankcase pressure regulator lets through at most.
+    """
 
     refrigerant: Refrigerant
     compressor: Compressor | PolynomialCompressor
@@ -37,6 +40,7 @@ class Parts:
     subcooling: float
     suction_line: SuctionLine = SuctionLine()
     discharge_line_loss: float = 0.0
+    suction_regulator: float | None = None
 
 
 class Circuit:
@@ -60,6 +64,8 @@ class Circuit:
             if line.pressure_loss or line.heating_share or line.warming:
                 warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
                 suction = fluid.vapour(outlet.T + warmer, fluid.dew(evaporating - line.pressure_loss).p)
+            if m.suction_regulator is not None and suction.p > m.suction_regulator:
+                suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
             self._low[evaporating] = (outlet, suction)
         return self._low[evaporating]
 
@@ -122,7 +128,7 @@ class Circuit:
             discharge_temperature=discharge.T,
             liquid_temperature=liquid.T,
             superheat=m.superheat,
-            compressor_superheat=suction.T - balance.evaporating_temperature + m.suction_line.pressure_loss,
+            compressor_superheat=suction.T - fluid.dew_temperature(suction.p),
             subcooling=m.subcooling if balance.condensing_temperature is not None else None,
             valve_outlet_temperature=throttled.T,
             line_gain=balance.compression.flow * (suction.h - outlet.h),

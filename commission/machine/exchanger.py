@@ -13,7 +13,7 @@ from typing import Literal
 
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
-from commission.machine.wet_air import coil_heat
+from commission.machine.wet_air import coil_conductance, coil_heat
 
 Flow = Literal["counterflow", "parallel", "crossflow unmixed"]
 
@@ -84,6 +84,17 @@ class Exchanger:
         if self.air_share is not None and stream.air is not None:
             return coil_heat(stream, refrigerant, self.conductance_at(stream.volume_flow), self.air_share)
         return self.heat_per_kelvin(stream) * (stream.temperature - refrigerant)
+
+    def conductance_for(self, stream: Stream, heat: float, refrigerant: float) -> float:
+        """Conductance in W/K with which this exchanger would take `heat` (W) from the medium: inverse of `heat_from`.
+
+        Raises:
+            NotCalculatedError: more heat than the medium can give at that difference.
+        """
+        if self.air_share is not None and stream.air is not None:
+            return coil_conductance(heat, refrigerant, stream, self.air_share)
+        difference = abs(stream.inlet(-heat) - refrigerant)
+        return conductance_for(heat, difference, stream.capacity_rate)
 
     def heat_per_kelvin(self, stream: Stream, flow_share: float = 1.0, surface_share: float = 1.0) -> float:
         """Heat in W for each kelvin between the known temperature of the medium and the refrigerant.

@@ -8,6 +8,7 @@ known and the manipulated share of the condenser is the unknown instead.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
@@ -22,13 +23,22 @@ from commission.properties import State
 FREE = "free condensing"
 HELD = "head pressure held"
 LOWEST = "head pressure below its setting, control at its lowest"
+LIMITED = "suction pressure limited"
+REGULATED = "suction pressure regulated"
+GAS_SHARE = 0.1
+"""Conductance of a surface that only superheats gas, over that of a wetted one (common practice, no source)."""
 
 
 @dataclass(frozen=True, slots=True)
 class SingleStage(Parts):
-    """One compressor, evaporator and condenser; with `head_pressure` the condensing temperature may be held."""
+    """One compressor, evaporator and condenser.
+
+    With `head_pressure` the condensing temperature may be held. `greatest_evaporating` is the dew point (K) above which
+    the valve closes (maximum operating pressure): the evaporator then starves and its superheat rises.
+    """
 
     head_pressure: HeadPressure | None = None
+    greatest_evaporating: float | None = None
 
     def balance(self, media: Media, start: Balance | None = None) -> Balance:
         """The balance at this condition; `start` is a neighbouring one that saves work.
@@ -44,8 +54,8 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: as `balance`.
         """
-        circuit = _Circuit(self, media)
-        return circuit.point(_balance(circuit, start))
+        balance = _balance(_Circuit(self, media), start)
+        return _Circuit(replace(self, superheat=balance.superheat), media).point(balance)
 
     def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
         """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
@@ -79,16 +89,27 @@ class SingleStage(Parts):
 
 
 def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
+    """The balance with the suction pressure limited where the free one would be above the limit of the valve."""
+    limit = circuit.machine.greatest_evaporating
+    if limit is not None and start is not None and start.regime.startswith(LIMITED):
+        start = None
+    balance = _high_side_control(circuit, start)
+    if limit is None or balance.evaporating_temperature <= limit:
+        return balance
+    return circuit.starved(limit)
+
+
+def _high_side_control(circuit: _Circuit, start: Balance | None) -> Balance:
     """Free where the condensing temperature stays above the setting of the head pressure, held below."""
     control = circuit.machine.head_pressure
     if control is None:
         return circuit.free(1.0, FREE, start)
-    likely = start.regime == HELD if start is not None else circuit.guess()[1] < control.hold
+    likely = start.regime.endswith(HELD) if start is not None else circuit.guess()[1] < control.hold
     if likely:
-        held = circuit.held(control, start if start is not None and start.regime == HELD else None)
+        held = circuit.held(control, start if start is not None and start.regime.endswith(HELD) else None)
         if held is not None:
             return held
-    free = circuit.free(1.0, FREE, start if start is not None and start.regime == FREE else None)
+    free = circuit.free(1.0, FREE, start if start is not None and start.regime.endswith(FREE) else None)
     if circuit.second(free) >= control.hold:
         return free
     held = circuit.held(control, None)
@@ -144,7 +165,8 @@ class _Circuit(Circuit):
         fluid = self.machine.refrigerant
         return fluid.bubble_temperature(fluid.dew(condensing).p) if fluid.is_blend else condensing
 
-    def _sink_gap(self, condensing: float, given: float, share: float) -> float:
+    def sink_gap(self, condensing: float, given: float, share: float) -> float:
+        """Heat that the sink takes less heat that the refrigerant gives, in tens of kelvin of the exchanger."""
         m, sink = self.machine, self.media.sink.settled(given)
         by = m.head_pressure.by if m.head_pressure else None
         per_kelvin = heat_per_kelvin(by, share, m.condenser, sink)
@@ -156,12 +178,12 @@ class _Circuit(Circuit):
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             _, taken, given = self.cycle(x[0], x[1])
-            return self.source_gap(x[0], x[1], taken), self._sink_gap(x[1], given, share)
+            return self.source_gap(x[0], x[1], taken), self.sink_gap(x[1], given, share)
 
         near = start is not None and len(start.unknowns) == 2
         guess = start.unknowns if near and start is not None else self.guess()
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self._result(solution.x[0], solution.x[1], share, regime, solution)
+        return self.result(solution.x[0], solution.x[1], share, regime, solution)
 
     def held(self, control: HeadPressure, start: Balance | None) -> Balance | None:
         """Condensing temperature held; None where the condenser would need more than its full share."""
@@ -188,18 +210,61 @@ class _Circuit(Circuit):
             return None
         if share == control.least_share:
             return self.free(share, LOWEST, None)
-        return self._result(solution.x[0], condensing, share, HELD, solution)
+        return self.result(solution.x[0], condensing, share, HELD, solution)
+
+    def starved(self, evaporating: float) -> Balance:
+        """Evaporating temperature held down by the valve; the superheat follows from the surface that stays dry.
+
+        The share of surface that is wetted is the conductance that the heat needs over the one there is. The rest
+        superheats the gas towards the medium with `GAS_SHARE` of the conductance, and nothing at a share of 1, so that
+        the superheat is continuous where the valve begins to close.
+        """
+        machine, source = self.machine, self.media.source
+        control = machine.head_pressure
+        whole = machine.evaporator.conductance_at(source.volume_flow)
+
+        def circuit(superheat: float) -> _Circuit:
+            return _Circuit(replace(machine, superheat=superheat), self.media)
+
+        def gap(superheat: float, condensing: float) -> float:
+            one = circuit(superheat)
+            compression, taken, _ = one.cycle(evaporating, condensing)
+            drive = one.source_drive(evaporating, condensing)
+            dry = max(1 - machine.evaporator.conductance_for(source, taken, drive) / whole, -0.5)
+            cp = (one.low_side(evaporating)[0].h - machine.refrigerant.dew(evaporating).h) / superheat
+            reach = -math.expm1(-GAS_SHARE * whole * dry / (compression.flow * cp))
+            wanted = machine.superheat + (source.temperature - evaporating - machine.superheat) * reach
+            return (wanted - superheat) / 10.0
+
+        def both(x: Sequence[float]) -> Sequence[float]:
+            one = circuit(x[0])
+            return gap(x[0], x[1]), one.sink_gap(x[1], one.cycle(evaporating, x[1])[2], 1.0)
+
+        guess = (machine.superheat + 2.0, self.guess()[1])
+        solution = solve(both, guess, largest_step=4.0)
+        superheat, condensing = solution.x
+        if control is None or condensing >= control.hold:
+            return circuit(superheat).result(evaporating, condensing, 1.0, LIMITED, solution)
+        solution = solve(lambda x: (gap(x[0], control.hold),), (superheat,), largest_step=4.0)
+        one = circuit(solution.x[0])
+        given = one.cycle(evaporating, control.hold)[2]
+        per_kelvin = given / (one.sink_drive(control.hold) - self.media.sink.temperature)
+        sink = self.media.sink.settled(given)
+        share = share_for(control.by, per_kelvin, machine.condenser, sink, control.least_share)
+        if share is None or share == control.least_share:
+            raise NotCalculatedError("no balance with suction pressure limited and head pressure held together")
+        return one.result(evaporating, control.hold, share, f"{LIMITED}, {HELD}", solution)
 
     def condensing_side(self, evaporating: float, start: Balance | None) -> Balance:
         """Only the condenser balances; the evaporating temperature is given."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            return (self._sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
+            return (self.sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
 
         near = start is not None and len(start.unknowns) == 1
         guess = start.unknowns if near and start is not None else self.guess()[1:]
         solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self._result(evaporating, solution.x[0], 1.0, FREE, solution)
+        return self.result(evaporating, solution.x[0], 1.0, FREE, solution)
 
     def guess(self) -> tuple[float, float]:
         """Evaporating and condensing temperature (K) to start from."""
@@ -208,12 +273,16 @@ class _Circuit(Circuit):
         highest = 0.94 * self.machine.refrigerant.T_critical
         return evaporating, min(max(sink + 10.0, evaporating + 15.0), highest)
 
-    def _result(self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution) -> Balance:
+    def result(self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution) -> Balance:
+        """The balance at a solution."""
         control = self.machine.head_pressure
         flow = flow_share(control, share)
         compression, source, sink = self.cycle(evaporating, condensing)
         settled = self.media.sink.settled(sink)
         through = replace(settled, capacity_rate=flow * settled.capacity_rate)
+        suction, limit = self.low_side(evaporating)[1].p, self.machine.suction_regulator
+        if limit is not None and suction >= limit * (1 - 1e-9):
+            regime = f"{REGULATED}, {regime}"
         return Balance(
             regime=regime,
             evaporating_temperature=evaporating,
@@ -226,6 +295,7 @@ class _Circuit(Circuit):
             source_inlet_temperature=self.media.source.inlet(-source),
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
+            superheat=self.machine.superheat,
             share=share,
             sink_fan_share=fan_share(control, share),
             sink_flow_share=flow,

@@ -154,6 +154,7 @@ class GasCoolerCircuit(Circuit):
             source_inlet_temperature=self.media.source.inlet(-source),
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
+            superheat=self.machine.superheat,
             share=1.0,
             sink_fan_share=1.0,
             sink_flow_share=1.0,

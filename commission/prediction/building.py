@@ -178,11 +178,12 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     exponent = a["air_side_exponent"]
     evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a))
     condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)
+    regulator, greatest = suction_limits(facts)
     machine: Machine
     if facts.transcritical:
         pressure = gas_cooler_pressure(facts, a)
         machine = Transcritical(
-            facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, pressure=pressure
+            facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, regulator, pressure=pressure
         )
     else:
         machine = SingleStage(
@@ -194,7 +195,9 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
             subcooling=a["liquid_subcooling"],
             suction_line=line,
             discharge_line_loss=a["discharge_line_loss"],
+            suction_regulator=regulator,
             head_pressure=head_pressure(facts, a),
+            greatest_evaporating=greatest,
         )
     cos_phi = system.compressor.power_factor
     return Plan(
@@ -204,6 +207,17 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         source_humidity=wet,
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
+    )
+
+
+def suction_limits(facts: Facts) -> tuple[float | None, float | None]:
+    """Pressure (Pa) of a crankcase pressure regulator, and dew point (K) at which the valve's own limit closes it."""
+    regulator, valve = facts.system.controls.crankcase_pressure_regulator, None
+    if facts.system.expansion is not None:
+        valve = facts.system.expansion.maximum_operating_pressure
+    return (
+        facts.loaded.absolute(regulator) if regulator is not None else None,
+        facts.fluid.dew_temperature(facts.loaded.absolute(valve)) if valve is not None else None,
     )
 
 

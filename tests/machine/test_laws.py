@@ -11,6 +11,7 @@ import pytest
 from commission.errors import NotCalculatedError
 from commission.machine import HELD, HeadPressure, Media, SingleStage, carnot_cooling, entropic_mean
 from commission.machine.head_pressure import heat_per_kelvin
+from commission.properties import refrigerant
 
 Make = Callable[..., SingleStage]
 Conditions = Callable[[float, float], Media]
@@ -111,3 +112,37 @@ def test_no_balance_says_why(real: Make, cold_room_media: Conditions) -> None:
     with pytest.raises(NotCalculatedError) as caught:
         real("R-744").operate(cold_room_media(2, 40))
     assert str(caught.value)
+
+
+def test_regulator_limits_the_suction_pressure(real: Make, cold_room_media: Conditions) -> None:
+    """A crankcase pressure regulator holds the suction pressure in a warm room and does nothing in a cold one."""
+    limit = refrigerant("R-290").dew(270.15).p
+    free, regulated = real(), real(suction_regulator=limit)
+    warm, plain = regulated.operate(cold_room_media(20, 32)), free.operate(cold_room_media(20, 32))
+    assert warm.suction_pressure == pytest.approx(limit)
+    assert plain.suction_pressure > limit
+    assert warm.balance.compression.power < plain.balance.compression.power
+    assert warm.balance.evaporating_temperature > plain.balance.evaporating_temperature
+    assert warm.balance.regime.startswith("suction pressure regulated")
+    cold = cold_room_media(0, 32)
+    assert regulated.balance(cold).evaporating_temperature == pytest.approx(free.balance(cold).evaporating_temperature)
+
+
+def test_valve_limit_holds_the_evaporating_temperature_without_a_jump(real: Make, cold_room_media: Conditions) -> None:
+    """Above its maximum operating pressure the valve starves the evaporator: superheat rises, nothing jumps."""
+    machine = real(greatest_evaporating=270.15)
+    low, high = 0.0, 20.0
+    for _ in range(40):
+        middle = 0.5 * (low + high)
+        limited = machine.balance(cold_room_media(middle, 32)).regime.startswith("suction pressure limited")
+        low, high = (low, middle) if limited else (middle, high)
+    below, above = machine.balance(cold_room_media(low, 32)), machine.balance(cold_room_media(high, 32))
+    assert below.evaporating_temperature == pytest.approx(above.evaporating_temperature, abs=1e-4)
+    assert below.heat_from_source == pytest.approx(above.heat_from_source, rel=1e-4)
+    assert above.superheat == pytest.approx(6.0, abs=0.01)
+    warm = machine.operate(cold_room_media(high + 8, 32))
+    assert warm.balance.evaporating_temperature == pytest.approx(270.15)
+    assert warm.superheat > 8.0
+    assert warm.superheat < high + 8 + 273.15 - 270.15
+    given = warm.balance.heat_from_source + warm.line_gain + warm.balance.compression.power
+    assert warm.balance.heat_to_sink == pytest.approx(given - warm.balance.compression.shell_loss, rel=1e-6)
