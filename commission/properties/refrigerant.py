@@ -336,12 +336,13 @@ def _again(name: str, entry: RegisterEntry) -> Refrigerant:
 def _make(known: str) -> Refrigerant:
     """From the shipped data, or from data made anew where they do not belong to the equations of state at hand."""
     from commission.properties import lines
-    from commission.properties.generate_lines import build
-    from commission.properties.models import model_of
 
     data = lines.read(known)
     if data is not None:
         made = Refrigerant(data)
         if made._agrees():
             return made
+    from commission.properties.generate_lines import build
+    from commission.properties.models import model_of
+
     return Refrigerant(build(known, *model_of(known)))
