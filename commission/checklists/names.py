@@ -48,7 +48,11 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "sink.liquid": ("yes/no", "heat is given to a liquid", ()),
         "source.antifreeze": ("yes/no", "the liquid that heat is taken from holds glycol", ()),
         "sink.antifreeze": ("yes/no", "the liquid that heat is given to holds glycol", ()),
-        "sink.tower": ("yes/no", "heat goes to the air over a cooling tower or an evaporative condenser", ()),
+        "sink.tower": (
+            "yes/no",
+            "whether the heat-sink water goes over a cooling tower",
+            (),
+        ),
         "source.outdoors": ("yes/no", "heat is taken from outdoor air", ()),
         "piped.on_site": ("yes/no", "refrigerant pipes are joined on site: not factory sealed", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),

@@ -35,12 +35,9 @@ def _outdoors(facts: Facts) -> bool:
 
 
 def _tower(facts: Facts) -> bool | None:
-    """Known where the condenser is evaporative or a wet bulb of the sink is stated; a chiller on water may have one."""
+    """Known where the condenser is evaporative; a chiller that gives heat to water may have a tower behind it."""
     system = facts.system
     if system.condenser.type == "evaporative":
-        return True
-    stated = [system.design, *system.rated_points]
-    if any(point is not None and point.heat_sink_wet_bulb is not None for point in stated):
         return True
     return None if system.heat_sink.medium == "water" and system.duty == "liquid_cooling" else False
 

@@ -108,12 +108,15 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
     if kind is None:
         return Target(says) if says else None
     worked = {key: _work(bound, kind, facts) for key, bound in item.must_read.items() if key != "within"}
+    within = item.must_read.get("within")
+    if "value" in worked and within is not None:
+        # a bound beside a value with a margin only caps the margin: one that is not known takes nothing away
+        worked = {key: found for key, found in worked.items() if key == "value" or found.known}
     explained = tuple(e for value in worked.values() for e in value.explained)
     missing = next((v.missing for v in worked.values() if not v.known), None)
     if missing is not None:
         text = missing if missing.startswith(STATED_NOWHERE) else f"not calculated: {missing}"
         return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
-    within = item.must_read.get("within")
     numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}
     value, low, high = _range(numbers, within if isinstance(within, str) else None, kind, explained)
     text = _range_text(value, low, high, kind, facts.display)
@@ -164,7 +167,7 @@ def _range(
         margin = abs(value) * parse(within, Kind.RATIO)
     else:
         margin = parse(within, _margin_kind(kind))
-    return value, value - margin, value + margin
+    return value, max(value - margin, low or value - margin), min(value + margin, high or value + margin)
 
 
 def _margin_kind(kind: Kind) -> Kind:

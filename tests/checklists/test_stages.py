@@ -29,6 +29,19 @@ def test_test_pressure_and_its_steps(cold_room: tuple[Stage, ...]) -> None:
     assert any(figure.method == "test_pressure" for figure in item.figures)
 
 
+def test_a_margin_never_passes_what_the_nameplate_allows(example_copy: Path) -> None:
+    """EN 378-2: the limit device may be set to 0.9 x 28 = 25.2 bar g; a margin of 3 % round 25 bar g is cut there."""
+    path = example_copy / "plant.yaml"
+    text = path.read_text(encoding="utf-8").replace("high_pressure_limit: 22 bar g", "high_pressure_limit: 25 bar g")
+    path.write_text(text, encoding="utf-8")
+    loaded = load_plant(example_copy)
+    found = items(stages(loaded, "cold-room"))["safety.high-pressure"].must_read
+    assert found is not None
+    assert found.high is not None
+    assert found.high - loaded.barometric_pressure == pytest.approx(25.2e5)
+    assert found.text.startswith("25.00 bar g")
+
+
 def test_vacuum_is_shown_absolute_with_its_criterion(cold_room: tuple[Stage, ...]) -> None:
     """A vacuum is never a gauge pressure, and the list says which criterion applies."""
     item = items(cold_room)["evacuation.level"]
