@@ -3,8 +3,8 @@
 from commission.safety.card import CardSection, EmergencyCard, emergency_card
 from commission.safety.charge import ADVICE, SpaceCharge, charge_limits
 from commission.safety.facts import MARKS, Fact, fact, facts
+from commission.safety.figure import QUANTITY_TITLES, Figure, Figures
 from commission.safety.figure import TITLES as FIGURE_TITLES
-from commission.safety.figure import Figure, Figures
 from commission.safety.figures import safety_figures
 from commission.safety.formulas import nitrogen_pressure
 from commission.safety.hot_water import warm_volume_below_element
@@ -22,6 +22,7 @@ __all__ = [
     "ADVICE",
     "FIGURE_TITLES",
     "MARKS",
+    "QUANTITY_TITLES",
     "CardSection",
     "ChargeLimit",
     "EmergencyCard",

@@ -82,6 +82,19 @@ TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
 """Every figure this room can calculate: title and kind by key."""
 
 
+QUANTITY_TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
+    {
+        **TITLES,
+        "allowable_pressure": ("pressure as stated", Kind.PRESSURE),
+        "charge": ("refrigerant charge", Kind.MASS),
+        "displacement": ("displacement of the compressor", Kind.VOLUME_FLOW),
+        "receiver_volume": ("volume of the receiver", Kind.VOLUME),
+        "warm_volume_below_element": ("volume that stays warm below the element", Kind.VOLUME),
+    }
+)
+"""Title and kind of every quantity that an `Explained` of this room can name, those outside `Figures` included."""
+
+
 @dataclass(frozen=True, slots=True)
 class Figures:
     """All safety figures of one system: those found, and for the others the reason."""

@@ -10,7 +10,12 @@ import pytest
 
 from commission.description import LoadedPlant, load_plant
 from commission.properties import refrigerant
+from commission.quantities import methods
 from commission.safety import (
+    QUANTITY_TITLES,
+    charge_limits,
+    leak_duty,
+    limit_order,
     market_dates,
     relief_duties,
     safety_figures,
@@ -105,6 +110,25 @@ def test_ventilation_counts_the_largest_charge_in_the_room() -> None:
     small = safety_figures(loaded, "water-heater").found["emergency_ventilation"]
     large = safety_figures(loaded, "tower-chiller").found["emergency_ventilation"]
     assert small.value == large.value == pytest.approx(0.014 * 90 ** (2 / 3))
+
+
+def test_every_quantity_of_the_room_has_a_title_and_a_kind() -> None:
+    """Whatever number a page shows, it can say what it is and in which unit."""
+    loaded = load_plant(YARD)
+    for system_id, system in loaded.plant.systems.items():
+        substance = substance_of(refrigerant(system.refrigerant))
+        figures = safety_figures(loaded, system_id)
+        shown = [figure.explained for figure in figures.found.values()]
+        shown += [e for duty in relief_duties(loaded, system_id, figures) for e in duty.figures]
+        shown += [e for problem in limit_order(loaded, system_id, figures).problems for e in problem.figures]
+        for space in charge_limits(loaded, system_id, substance):
+            shown += [limit.value for limit in (*space.limits, *space.alternatives) if limit.value is not None]
+            shown += [space.concentration] if space.concentration is not None else []
+        duty = leak_duty(EU, substance, system.charge, system.sealed, system.duty)
+        shown += [duty.measure] if duty.measure is not None else []
+        for explained in shown:
+            assert explained.quantity in QUANTITY_TITLES
+            assert explained.method in methods()
 
 
 def test_no_ventilation_figure_outdoors(plant: Plants) -> None:
