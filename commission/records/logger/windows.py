@@ -1,0 +1,145 @@
+"""Where a log stood still long enough for its readings to count, and whole cycles where the plant cycles."""
+
+from __future__ import annotations
+
+import itertools
+import math
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from commission.records.logger.rows import Log
+
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
+PARTS = 5
+"""A window is cut in so many parts; their means are the samples. Rows of a logger follow one another too closely to
+be independent: counting each row would make the spread of the mean far too small (batch means, a common method)."""
+_SHORTEST_RUN = 60.0
+"""Seconds; a shorter start is the bounce of a contactor or a reading, not a cycle."""
+
+
+@dataclass(frozen=True, slots=True)
+class Window:
+    """A stretch of a log. `means` and `parts` (means of its parts in order) in SI; `score` is the largest movement over
+    its limit, at most 1 for a steady window, None for whole cycles; `running_share` only there.
+    """
+
+    start: float
+    end: float
+    means: Mapping[str, float]
+    parts: Mapping[str, tuple[float, ...]]
+    score: float | None = None
+    running_share: float | None = None
+
+
+def steady_windows(
+    log: Log, length: float = 1200.0, *, limits: str = "site", liquid_sides: frozenset[str] = frozenset()
+) -> tuple[Window, ...]:
+    """All windows of `length` s, a quarter apart, in which every quantity stood still by the chosen limits.
+
+    `limits` names a set of `steadiness.yaml`. A window with a gap, or in which a quantity has no value at all, is none.
+    """
+    return tuple(w for w in _windows(log, length, limits, liquid_sides) if w.score is not None and w.score <= 1.0)
+
+
+def quietest(
+    log: Log, length: float = 1200.0, *, limits: str = "site", liquid_sides: frozenset[str] = frozenset()
+) -> Window | None:
+    """The steadiest of the steady windows, the earliest of equals; None where nothing stood still."""
+    found = steady_windows(log, length, limits=limits, liquid_sides=liquid_sides)
+    return min(found, key=lambda w: (w.score or 0.0, w.start)) if found else None
+
+
+def whole_cycles(log: Log, count: int = 3, key: str = "power_input") -> tuple[Window, ...]:
+    """Stretches of `count` whole cycles, from start to start, by the quantity that shows whether it runs.
+
+    It runs where `key` is above the middle between its low and its high level (10th and 90th percentile). Means are
+    over time, standstill included; without two clear levels (a factor of two) there are no cycles.
+    """
+    import numpy as np
+
+    values = log.values.get(key)
+    if values is None or not np.any(np.isfinite(values)):
+        return ()
+    low, high = (float(x) for x in np.nanpercentile(values, (10, 90)))
+    if high <= 2.0 * abs(low):
+        return ()
+    runs = np.where(np.isfinite(values), values, low) > 0.5 * (low + high)
+    starts = _starts(log.times, runs)
+    found = []
+    for first, last in zip(starts[:-count], starts[count:], strict=False):
+        window = _window(log, first, last)
+        if window is not None:
+            inside = (log.times >= first) & (log.times < last)
+            share = float(np.mean(runs[inside]))
+            found.append(Window(window.start, window.end, window.means, window.parts, None, share))
+    return tuple(found)
+
+
+def _starts(times: NDArray[np.float64], runs: NDArray[np.bool_]) -> list[float]:
+    """Moments at which it starts and then runs for a while."""
+    import numpy as np
+
+    edges = np.flatnonzero(np.diff(runs.astype(np.int8))) + 1
+    rising = [int(e) for e in edges if runs[e]]
+    found = []
+    for edge in rising:
+        later = edges[edges > edge]
+        end = times[int(later[0])] if len(later) else times[-1]
+        if end - times[edge] >= _SHORTEST_RUN:
+            found.append(float(times[edge]))
+    return found
+
+
+def _windows(log: Log, length: float, limits: str, liquid_sides: frozenset[str]) -> Iterator[Window]:
+    if not len(log.times):
+        return
+    start, last = float(log.times[0]), float(log.times[-1])
+    step = length / 4.0
+    for n in range(max(0, math.floor((last - length - start) / step + 1e-9) + 1)):
+        window = _window(log, start + n * step, start + n * step + length)
+        if window is not None:
+            score = _score(log, window, limits, liquid_sides)
+            yield Window(window.start, window.end, window.means, window.parts, score)
+
+
+def _window(log: Log, start: float, end: float) -> Window | None:
+    """Means over a stretch; None where it holds a gap or a quantity has a part without values."""
+    import numpy as np
+
+    if any(g.start < end and g.end > start for g in log.report.gaps):
+        return None
+    edges = np.searchsorted(log.times, np.linspace(start, end, PARTS + 1))
+    if int(np.min(np.diff(edges))) < 1:
+        return None
+    means, parts = {}, {}
+    for key, values in log.values.items():
+        pieces = [values[a:b] for a, b in itertools.pairwise(edges)]
+        if not all(bool(np.any(np.isfinite(p))) for p in pieces):
+            return None
+        parts[key] = tuple(float(np.nanmean(p)) for p in pieces)
+        means[key] = float(np.nanmean(values[edges[0] : edges[-1]]))
+    return Window(start, end, means, parts)
+
+
+def _score(log: Log, window: Window, limits: str, liquid_sides: frozenset[str]) -> float | None:
+    """Largest movement of any row over its limit; None where no quantity of the log has a limit."""
+    import numpy as np
+
+    from commission.acceptance.instruments import Reading
+    from commission.acceptance.steadiness import library, steadiness
+
+    least = int(library()[limits]["least_samples"])
+    first, last = np.searchsorted(log.times, (window.start, window.end))
+    readings = []
+    for key, mean in window.means.items():
+        largest = float(np.nanmax(np.abs(log.values[key][first:last] - mean)))
+        # The same mean and the same largest movement as all the rows have, in as few samples as the limits ask for.
+        samples = (mean + largest, mean - largest, *(mean for _ in range(max(0, least - 2))))
+        readings.append(Reading(key, mean, samples=samples))
+    checks = steadiness(readings, None, None, limits=limits, liquid_sides=liquid_sides)
+    found = [c.largest / c.limit for c in checks if c.largest is not None and c.limit > 0.0]
+    return max(found, default=None)
