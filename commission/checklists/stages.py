@@ -16,7 +16,7 @@ from commission.safety import MARKS, safety_figures, substance_of
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
-    from commission.prediction import SystemModel
+    from commission.prediction import Prediction, SystemModel
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,13 +66,13 @@ class Stage:
 def stages(
     loaded: LoadedPlant,
     system_id: str,
-    model: SystemModel | None = None,
+    model: SystemModel | Prediction | None = None,
     conditions: Mapping[str, float] | None = None,
     library: Sequence[CheckedStage] | None = None,
 ) -> tuple[Stage, ...]:
     """The checklist of one system; a stage in which nothing applies is left out.
 
-    `model` is the fitted model; without it expected readings say that they are not calculated. `conditions` (SI, keys
+    `model` is the fitted model, or one prediction of it; without it expected readings say that they are not calculated. `conditions` (SI, keys
     of the nomenclature) is the condition of the expected readings, None the rated one. `library` replaces the shipped
     library and the plant's own files.
 
@@ -108,15 +108,17 @@ def stages(
 
 
 def facts_of(
-    loaded: LoadedPlant, system_id: str, model: SystemModel | None, conditions: Mapping[str, float] | None
+    loaded: LoadedPlant, system_id: str, model: SystemModel | Prediction | None, conditions: Mapping[str, float] | None
 ) -> Facts:
     """Everything the checklist of one system is worked out from."""
+    from commission.prediction import Prediction
     from commission.properties import refrigerant
 
     substance = substance_of(refrigerant(loaded.system(system_id).refrigerant))
     found, missing = predictions(model, loaded, system_id, conditions)
     display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
-    return Facts(loaded, system_id, substance, safety_figures(loaded, system_id, model), found, missing, display)
+    figures = safety_figures(loaded, system_id, None if isinstance(model, Prediction) else model)
+    return Facts(loaded, system_id, substance, figures, found, missing, display)
 
 
 def _applies(item: CheckedItem, facts: Facts) -> tuple[bool, str | None]:

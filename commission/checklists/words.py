@@ -71,9 +71,17 @@ class Facts:
 
 
 def predictions(
-    model: SystemModel | None, loaded: LoadedPlant, system_id: str, conditions: Mapping[str, float] | None
+    model: SystemModel | Prediction | None,
+    loaded: LoadedPlant,
+    system_id: str,
+    conditions: Mapping[str, float] | None,
 ) -> tuple[dict[str, Prediction], dict[str, str]]:
     """Predictions at the condition of the list and on the hottest and coldest design days, or why there are none."""
+    from commission.prediction import Prediction
+
+    if isinstance(model, Prediction):
+        reason = "only one condition was calculated"
+        return {"expected": model}, {"hottest": reason, "coldest": reason}
     found: dict[str, Prediction] = {}
     missing: dict[str, str] = {}
     climate = loaded.plant.plant.climate

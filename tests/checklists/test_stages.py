@@ -80,6 +80,16 @@ def test_another_day_gives_other_readings(example_folder: Path) -> None:
     assert "outdoors 20.0 °C" in found.text
 
 
+def test_one_prediction_is_enough_for_its_own_condition(example_folder: Path) -> None:
+    """A prediction in place of the model fills in its condition and says that other days were not calculated."""
+    loaded = load_plant(example_folder)
+    prediction = fit(loaded, "cold-room").predict()
+    found = items(stages(loaded, "cold-room", prediction))
+    target = found["performance.discharge-pressure"].must_read
+    assert target is not None
+    assert target.value == pytest.approx(prediction.expected["discharge_pressure"].value)
+
+
 def test_without_a_model_the_reason_is_shown(yard_stages: Callable[[str], tuple[Stage, ...]]) -> None:
     """Expected readings of a system that could not be calculated say so; nothing is put in their place."""
     item = items(yard_stages("freezer"))["performance.discharge-pressure"]
