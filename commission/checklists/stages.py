@@ -72,9 +72,9 @@ def stages(
 ) -> tuple[Stage, ...]:
     """The checklist of one system; a stage in which nothing applies is left out.
 
-    `model` is the fitted model, or one prediction of it; without it expected readings say that they are not calculated. `conditions` (SI, keys
-    of the nomenclature) is the condition of the expected readings, None the rated one. `library` replaces the shipped
-    library and the plant's own files.
+    `model` is the fitted model, or one prediction of it; without it expected readings say that they are not calculated.
+    `conditions` (SI, keys of the nomenclature) is the condition of the expected readings, None the rated one. `library`
+    replaces the shipped library and the plant's own files.
 
     Raises:
         InputError: no such system or refrigerant.
