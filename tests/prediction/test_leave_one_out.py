@@ -7,7 +7,7 @@ import math
 import pytest
 
 from commission.description import LoadedPlant
-from commission.prediction import fitting, rated, simulating
+from commission.prediction import fitting, problem, rated, simulating
 from commission.prediction.facts import facts_of
 
 
@@ -17,7 +17,7 @@ def _misses(example: LoadedPlant, monkeypatch: pytest.MonkeyPatch) -> list[tuple
     cases = rated.cases_of(facts)
     found = []
     for left in cases:
-        monkeypatch.setattr(fitting, "cases_of", lambda _, left=left: tuple(c for c in cases if c is not left))
+        monkeypatch.setattr(problem, "cases_of", lambda _, left=left: tuple(c for c in cases if c is not left))
         fit = fitting.fit_system(facts)
         point = simulating.simulate(facts, fit.values, fit.plan, left, None)
         for datum in left.data:

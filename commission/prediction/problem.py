@@ -1,0 +1,227 @@
+"""What a fit is about: data, free levels, where to start, and the machine at given levels."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+
+from commission.errors import NotCalculatedError
+from commission.machine import Transcritical, conductance_for
+from commission.prediction.building import (
+    SINK_HUMIDITY,
+    Levels,
+    Plan,
+    Rated,
+    air_share,
+    build,
+    condenser_conductance,
+    evaporator_conductance,
+    humidity,
+    media,
+    source_conductance,
+    stream,
+)
+from commission.prediction.facts import Facts
+from commission.prediction.rated import Case, Datum, cases_of, rated_of, reference, with_data
+
+
+@dataclass(frozen=True)
+class Problem:
+    """Everything fixed during one fit: which levels are free and which assumptions may move."""
+
+    facts: Facts
+    cases: tuple[Case, ...]
+    reference: int
+    fixed_compressor: bool
+    fixed_evaporator: bool
+    fixed_condenser: bool
+    loose: tuple[str, ...]
+
+    @property
+    def free(self) -> tuple[int, ...]:
+        """Numbers of the levels (in the order of `Levels`) that the fit may move."""
+        return (
+            *(() if self.fixed_compressor else (0, 1)),
+            *(() if self.fixed_condenser else (2,)),
+            *(() if self.fixed_evaporator else (3,)),
+        )
+
+
+def prepare(facts: Facts, a: Mapping[str, float]) -> tuple[Problem, Levels]:
+    """Data, free levels, and levels to start from; assumptions become data where too little is stated."""
+    cases = list(cases_of(facts))
+    middle = reference(tuple(cases))
+    case = cases[middle]
+    rated = rated_of(facts, a, case)
+    evaporator = _evaporator(facts, a, rated, case)
+    condenser = condenser_conductance(facts, a, rated.sink_flow)
+    published = facts.system.compressor.polynomial is not None and not any(c.data for c in cases)
+    missing = _missing(facts, cases, evaporator is None, condenser is None, published)
+    cases[middle] = with_data(case, tuple(missing))
+    problem = Problem(facts, tuple(cases), middle, published, evaporator is not None, condenser is not None, ())
+    return problem, _start(problem, a, rated)
+
+
+def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) -> float | None:
+    known = evaporator_conductance(facts, a, rated.source_flow)
+    if known is not None or case.unit is None:
+        return known
+    medium = stream(
+        rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
+    )
+    return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
+
+
+def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool, published: bool) -> list[Datum]:
+    """Assumptions that stand in for data that nobody states, at the reference case."""
+    stated = {d.of for c in cases for d in c.data}
+    extra = []
+
+    def assume(of: str, key: str) -> None:
+        one = facts.assumptions[key]
+        extra.append(Datum(of, one.value, 0.02 * (one.standard_uncertainty or 1.0), f"assumption {key}", key))
+
+    compressor = facts.system.compressor
+    if evaporator and "evaporating_temperature" not in stated:
+        assume("source_minus_evaporating", "source_minus_evaporating")
+    if condenser and "condensing_temperature" not in stated:
+        assume("condensing_minus_sink_inlet", sink_difference(facts))
+    if published:
+        return extra
+    if not {"power_input", "compressor_power"} & stated and not {"cooling_capacity", "heating_capacity"} <= stated:
+        value, origin = compressor.isentropic_efficiency, facts.origin("compressor.isentropic_efficiency")
+        if value is not None:
+            extra.append(Datum("isentropic_efficiency", value, 0.01 * value, origin))
+        else:
+            assume("isentropic_efficiency", "compressor_isentropic_efficiency")
+    if not {"cooling_capacity", "heating_capacity", "refrigerant_flow"} & stated:
+        value, origin = compressor.volumetric_efficiency, facts.origin("compressor.volumetric_efficiency")
+        if value is not None:
+            extra.append(Datum("volumetric_efficiency", value, 0.01 * value, origin))
+        else:
+            assume("volumetric_efficiency", "compressor_volumetric_efficiency")
+    return extra
+
+
+def _start(problem: Problem, a: Mapping[str, float], rated: Rated) -> Levels:
+    """Levels from the reference point with dew points as stated or assumed, without any balance."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+    given = {d.of: d.value for d in case.data}
+    evaporating, condensing = _dew_points(problem, a, rated, given)
+    plan = build(facts, a, Levels(1.0, 1.0, 1.0, 1.0), rated)
+    conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
+    compression, source, _ = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
+    if isinstance(plan.machine, Transcritical):
+        return _gas_cooler_start(problem, a, rated, plan, evaporating, condensing)
+    if problem.fixed_compressor:
+        heat = source + compression.power
+        return Levels(1.0, 1.0, *_conductances(problem, a, rated, evaporating, condensing, heat))
+    swept = rated.source_heat / source
+    power = given.get("power_input")
+    if power is None and "cooling_capacity" not in given and "heating_capacity" not in given:
+        power = rated.sink_heat - rated.source_heat
+    counted = plan.fans.counted(1.0) if "power_input" in given else 0.0
+    if power is not None and power <= counted:
+        raise NotCalculatedError(
+            f"the power input at {case.origin} ({power / 1e3:.2f} kW) is no more than the fans it is said to include "
+            f"({counted / 1e3:.2f} kW): nothing is left for the compressor"
+        )
+    isentropic = swept * compression.power / (power - counted) if power else 0.65
+    heat = rated.source_heat + swept * compression.power / isentropic
+    return Levels(swept, isentropic, *_conductances(problem, a, rated, evaporating, condensing, heat))
+
+
+def _gas_cooler_start(
+    problem: Problem, a: Mapping[str, float], rated: Rated, plan: Plan, evaporating: float, outlet: float
+) -> Levels:
+    """Levels of a transcritical machine: the gas cooler's conductance follows from its outlet temperature."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+    machine = plan.machine
+    assert isinstance(machine, Transcritical)
+    conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
+    around = media(facts, plan, conditions)
+    compression, source, _ = machine.cycle(evaporating, outlet, around)
+    swept = 1.0 if problem.fixed_compressor else rated.source_heat / source
+    power = {d.of: d.value for d in case.data}.get("power_input")
+    counted = plan.fans.counted(1.0)
+    isentropic = swept * compression.power / (power - counted) if power is not None and power > counted else 0.65
+    if problem.fixed_compressor:
+        isentropic = 1.0
+    small = replace(around, sink=replace(around.sink, capacity_rate=around.sink.capacity_rate / swept))
+    slow = build(facts, a, Levels(1.0, isentropic, 1.0, 1.0), rated).machine
+    assert isinstance(slow, Transcritical)
+    conductance = swept * slow.cycle_conductance(evaporating, outlet, small)
+    evaporator = _evaporator(facts, a, rated, case)
+    if evaporator is None:
+        difference = rated.source_temperature - evaporating
+        evaporator = source_conductance(rated.source_heat, difference, around.source, air_share(facts, a))
+    return Levels(swept, isentropic, conductance, evaporator)
+
+
+def _dew_points(
+    problem: Problem, a: Mapping[str, float], rated: Rated, given: Mapping[str, float]
+) -> tuple[float, float]:
+    """Evaporating and condensing dew points (K) at the reference point, as stated or assumed."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+
+    def assumed(of: str, key: str) -> float:
+        return given[of] if of in given else a[key]
+
+    if case.unit is not None:
+        evaporating = case.unit.evaporating
+    elif "evaporating_temperature" in given:
+        evaporating = given["evaporating_temperature"]
+    else:
+        evaporating = rated.source_temperature - assumed("source_minus_evaporating", "source_minus_evaporating")
+        evaporating += 0.35 * _glide(facts, evaporating)
+    condensing = given.get("condensing_temperature")
+    if condensing is None:
+        difference = 12.0 if problem.fixed_condenser else assumed("condensing_minus_sink_inlet", sink_difference(facts))
+        condensing = rated.sink_temperature + difference
+        condensing += 0.5 * _glide(facts, condensing)
+    return evaporating, condensing
+
+
+def sink_difference(facts: Facts) -> str:
+    """Key of the assumption that sizes a condenser or a gas cooler of which nothing is stated."""
+    return "gas_cooler_approach" if facts.transcritical else "condensing_minus_sink_inlet"
+
+
+def _glide(facts: Facts, temperature: float) -> float:
+    """Dew point minus bubble point in K at the dew pressure of `temperature`; 0 for a pure fluid."""
+    fluid = facts.fluid
+    return temperature - fluid.bubble_temperature(fluid.dew(temperature).p) if fluid.is_blend else 0.0
+
+
+def _conductances(
+    problem: Problem, a: Mapping[str, float], rated: Rated, evaporating: float, condensing: float, heat: float
+) -> tuple[float, float]:
+    facts, case = problem.facts, problem.cases[problem.reference]
+    condenser = condenser_conductance(facts, a, rated.sink_flow)
+    if condenser is None:
+        medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+        condenser = conductance_for(
+            heat, condensing - 0.5 * _glide(facts, condensing) - rated.sink_temperature, medium.capacity_rate
+        )
+    evaporator = _evaporator(facts, a, rated, case)
+    if evaporator is None:
+        medium = stream(
+            rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
+        )
+        difference = rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating)
+        evaporator = source_conductance(rated.source_heat, difference, medium, air_share(facts, a))
+    return condenser, evaporator
+
+
+def plan_of(problem: Problem, a: Mapping[str, float], levels: Levels) -> Plan:
+    """The machine with these free levels; conductances that are rated follow the assumption values."""
+    facts, case = problem.facts, problem.cases[problem.reference]
+    rated = rated_of(facts, a, case)
+    evaporator = _evaporator(facts, a, rated, case) if problem.fixed_evaporator else levels.evaporator
+    condenser = condenser_conductance(facts, a, rated.sink_flow) if problem.fixed_condenser else levels.condenser
+    assert evaporator is not None
+    assert condenser is not None
+    if problem.fixed_compressor:
+        flow = 1 + a["compressor_flow_departure"]
+        levels = replace(levels, swept_flow=flow, isentropic=flow / (1 + a["compressor_power_departure"]))
+    return build(facts, a, replace(levels, evaporator=evaporator, condenser=condenser), rated)
