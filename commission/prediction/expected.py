@@ -7,9 +7,19 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
-from commission.machine import Balance, Media, OperatingPoint, carnot_cooling, entropic_mean, leaving_air
+from commission.machine import (
+    Balance,
+    Media,
+    OperatingPoint,
+    Transcritical,
+    carnot_cooling,
+    entropic_mean,
+    leaving_air,
+)
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
+
+ABOVE_CRITICAL = "above the critical point there is no condensing temperature"
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,29 +53,36 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "compressor_power": balance.compression.power,
         "fan_power": plan.fans.counted(balance.sink_fan_share),
         "power_input": power,
-        "cooling_cop": balance.heat_from_source / power,
-        "heating_cop": balance.heat_to_sink / power,
     }
+    if heats(facts):
+        values["heating_cop"] = balance.heat_to_sink / power
+    else:
+        values["cooling_cop"] = balance.heat_from_source / power
     found = Found(values, {})
-    _condensing(point, found)
+    _high_side(plan, point, found)
     _add(found, "current", lambda: _current(facts, plan, power))
-    _media(plan, media, balance, found)
+    _media(facts, plan, media, balance, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
 
 
-def _condensing(point: OperatingPoint, found: Found) -> None:
-    """What only a condenser has; a gas cooler above the critical point condenses nothing."""
-    condensing = point.balance.condensing_temperature
-    if condensing is None or point.subcooling is None:
-        reason = "the high side is above the critical point: nothing condenses"
+def _high_side(plan: Plan, point: OperatingPoint, found: Found) -> None:
+    """What a condenser has, and what a gas cooler has; above the critical point nothing condenses."""
+    condensing, inlet = point.balance.condensing_temperature, point.balance.sink_inlet_temperature
+    subcooling = point.subcooling
+    if isinstance(plan.machine, Transcritical):
+        found.values["gas_cooler_outlet_temperature"] = point.liquid_temperature
+        found.values["gas_cooler_approach"] = point.liquid_temperature - inlet
+        if condensing is not None:
+            subcooling = condensing - point.liquid_temperature
+    if condensing is None or subcooling is None:
         for key in ("condensing_temperature", "condenser_temperature_difference", "subcooling"):
-            found.reasons[key] = reason
+            found.reasons[key] = ABOVE_CRITICAL
         return
     found.values["condensing_temperature"] = condensing
-    found.values["condenser_temperature_difference"] = condensing - point.balance.sink_inlet_temperature
-    found.values["subcooling"] = point.subcooling
+    found.values["condenser_temperature_difference"] = condensing - inlet
+    found.values["subcooling"] = subcooling
 
 
 def _add(found: Found, key: str, calculate: Callable[[], float]) -> None:
@@ -83,7 +100,7 @@ def _current(facts: Facts, plan: Plan, power: float) -> float:
     return power / (lines * plate.voltage * plan.power_factor)
 
 
-def _media(plan: Plan, media: Media, balance: Balance, found: Found) -> None:
+def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Found) -> None:
     source = media.source
     source_in, sink_in, sink_out = (
         balance.source_inlet_temperature,
@@ -113,11 +130,20 @@ def _media(plan: Plan, media: Media, balance: Balance, found: Found) -> None:
     _add(
         found,
         "carnot_cop",
-        lambda: carnot_cooling(entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out)),
+        lambda: (
+            carnot_cooling(entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out))
+            + (1.0 if heats(facts) else 0.0)
+        ),
     )
 
 
-def beats_carnot(values: Mapping[str, float]) -> bool:
-    """Whether cooling over compressor power lies above the Carnot COP of the media."""
+def heats(facts: Facts) -> bool:
+    """Whether the system is there to heat: its COP is then that of heating, and so is its Carnot limit."""
+    return facts.system.duty in ("space_heating", "water_heating")
+
+
+def beats_carnot(facts: Facts, values: Mapping[str, float]) -> bool:
+    """Whether the heat that counts, over compressor power alone, lies above the Carnot COP of the media."""
     limit = values.get("carnot_cop")
-    return limit is not None and values["cooling_capacity"] / values["compressor_power"] > limit
+    heat = values["heating_capacity" if heats(facts) else "cooling_capacity"]
+    return limit is not None and heat / values["compressor_power"] > limit

@@ -38,6 +38,8 @@ METHOD: Mapping[str, str] = {
     "carnot_cop": "carnot_cooling",
     "sensible_heat_ratio": "wet_coil",
     "heat_sink_flow": "medium_flow",
+    "gas_cooler_outlet_temperature": "gas_cooler_balance",
+    "gas_cooler_approach": "temperature_difference",
     "heat_source_inlet_temperature": "medium_outlet",
     "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
@@ -46,6 +48,12 @@ METHOD: Mapping[str, str] = {
     "heat_sink_temperature_change": "medium_outlet",
 }
 """Method of `methods.yaml` for each expected quantity."""
+
+GAS_COOLER: Mapping[str, str] = {
+    "discharge_pressure": "gas_cooler_pressure",
+    "liquid_temperature": "gas_cooler_balance",
+}
+"""Methods of a circuit with a gas cooler, in place of those above."""
 
 _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "suction_pressure": ("evaporating_temperature",),
@@ -62,6 +70,8 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "compressor_superheat": ("suction_temperature", "suction_pressure"),
     "evaporator_temperature_difference": ("evaporating_temperature",),
     "condenser_temperature_difference": ("condensing_temperature",),
+    "gas_cooler_outlet_temperature": ("discharge_pressure", "discharge_temperature", "refrigerant_flow"),
+    "gas_cooler_approach": ("gas_cooler_outlet_temperature",),
     "pressure_ratio": ("suction_pressure", "discharge_pressure"),
     "refrigerant_flow": ("suction_pressure", "suction_temperature", "pressure_ratio"),
     "cooling_capacity": ("refrigerant_flow", "evaporating_temperature", "superheat", "liquid_temperature"),
@@ -91,6 +101,8 @@ _MEDIA: Mapping[str, tuple[str, ...]] = {
     "condensing_temperature": ("heat_sink_inlet_temperature", "heat_sink_flow"),
     "evaporator_temperature_difference": ("heat_source_inlet_temperature",),
     "condenser_temperature_difference": ("heat_sink_inlet_temperature",),
+    "gas_cooler_outlet_temperature": ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature", "heat_sink_flow"),
+    "gas_cooler_approach": ("heat_sink_inlet_temperature",),
     "carnot_cop": ("heat_source_inlet_temperature", "heat_sink_inlet_temperature"),
     "sensible_heat_ratio": ("heat_source_inlet_temperature", "heat_source_relative_humidity", "heat_source_flow"),
     "heat_source_outlet_temperature": (
@@ -118,6 +130,7 @@ def explain(
     """`Explained` for every expected value."""
     stated = _stated(facts, fit, point)
     table = {}
+    methods = {**METHOD, **GAS_COOLER} if facts.transcritical else METHOD
     for key, value in found.values.items():
         own = parts[key]
         uncertainty = math.sqrt(sum(v * v for v in own.values()))
@@ -135,7 +148,7 @@ def explain(
         named = [c for c, v in own.items() if c in fit.used and abs(v) >= NOTICED * uncertainty]
         named.sort(key=lambda c: -abs(own[c]))
         inputs += [Input(c, fit.values[c], fit.used[c].kind, f"assumption {c}") for c in named]
-        table[key] = Explained(key, value, uncertainty, METHOD[key], tuple(inputs), tuple(named))
+        table[key] = Explained(key, value, uncertainty, methods[key], tuple(inputs), tuple(named))
     return table
 
 
@@ -162,9 +175,10 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
         ("evaporating_temperature",),
         Input("conductance of the evaporator", machine.evaporator.conductance, conductance, "fitted"),
     )
+    cooler = "gas cooler" if facts.transcritical else "condenser"
     add(
-        ("condensing_temperature",),
-        Input("conductance of the condenser", machine.condenser.conductance, conductance, "fitted"),
+        ("condensing_temperature", "gas_cooler_outlet_temperature"),
+        Input(f"conductance of the {cooler}", machine.condenser.conductance, conductance, "fitted"),
     )
     if system.evaporator.rating is not None:
         rating = system.evaporator.rating
