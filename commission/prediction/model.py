@@ -192,7 +192,7 @@ class SystemModel:
         self._own_parts(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
         warnings = [*outside, *point.warnings]
-        if beats_carnot(nominal.values):
+        if beats_carnot(self.facts, nominal.values):
             warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")
         return Prediction(
             self.system_id,
