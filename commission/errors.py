@@ -3,9 +3,8 @@
 from __future__ import annotations
 
 import difflib
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
-from itertools import islice
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,26 +63,32 @@ class NotCalculatedError(CommissionError):
 
 def shorten(text: str, limit: int = 120) -> str:
     """`text` on one line and at most `limit` characters, so that a hostile value cannot flood a message."""
-    flat = " ".join(text.split())
-    return flat if len(flat) <= limit else flat[: limit - 1] + "…"
+    flat = " ".join(text[: 20 * limit].split())
+    whole = len(flat) <= limit and len(text) <= 20 * limit
+    return flat if whole else flat[: limit - 1] + "…"
 
 
 def nearest(word: str, known: Iterable[str], cutoff: float = 0.6) -> str | None:
     """The known word most like `word`, or None where none is alike; capitals and spaces count least.
 
-    Only the first 80 characters of `word` and the first 2,000 known words are looked at, so that a hostile file
-    cannot make this slow.
+    Only the first 40 characters of `word` and the first 4,000 characters of known words are looked at, so that a
+    hostile file cannot make this slow.
     """
-    words = list(islice(known, 2000))
-    start = word[:80]
-    plain = {_plain(one): one for one in reversed(words)}
-    if _plain(start) in plain:
-        return plain[_plain(start)]
-    found = difflib.get_close_matches(start, words, n=1, cutoff=cutoff)
-    if found:
-        return found[0]
-    found = difflib.get_close_matches(_plain(start), plain, n=1, cutoff=cutoff)
+    plain = {_plain(one[:40]): one for one in reversed(list(_first(known, 4_000)))}
+    start = _plain(word[:40])
+    if start in plain:
+        return plain[start]
+    found = difflib.get_close_matches(start, plain, n=1, cutoff=cutoff)
     return plain[found[0]] if found else None
+
+
+def _first(words: Iterable[str], characters: int) -> Iterator[str]:
+    """Words from the start, until they hold so many characters."""
+    for word in words:
+        characters -= len(word)
+        if characters < 0:
+            return
+        yield word
 
 
 def _plain(word: str) -> str:

@@ -1,5 +1,7 @@
 """Errors carry data, print as a person reads them, and stay bounded."""
 
+import time
+
 import pytest
 
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem, nearest, shorten
@@ -34,6 +36,16 @@ def test_hostile_text_cannot_flood_a_message() -> None:
     assert len(str(Problem("m", "f", 1, 1, long, long, long))) < 1500
     assert shorten("a\n b") == "a b"
     assert len(shorten(long)) == 120
+
+
+def test_nearest_is_quick_whatever_is_known() -> None:
+    """A hundred slips among thousands of long ids that look alike cost no more than a breath."""
+    letters = "abcdefghij" * 6
+    known = [letters[n % 60 :] + letters[: n % 60] for n in range(5000)]
+    started = time.process_time()
+    for n in range(100):
+        nearest(letters[::-1][n % 60 :], known)
+    assert time.process_time() - started < 2.0
 
 
 @pytest.mark.parametrize(

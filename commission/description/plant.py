@@ -6,6 +6,7 @@ import hashlib
 from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import islice
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -98,9 +99,9 @@ def load_plant(folder: Path | str) -> LoadedPlant:
             Problem("there is no such folder", file=str(folder), allowed=f"a folder that holds {PLANT_FILE}")
         )
     if not (folder / PLANT_FILE).exists():
-        raise DescriptionError(
-            Problem("there is no such file", file=PLANT_FILE, allowed=f"a folder that holds it; {folder} does not")
-        )
+        near = nearest(PLANT_FILE, sorted(path.name for path in islice(folder.iterdir(), 1000)), cutoff=0.7)
+        allowed = f"a folder that holds it; {folder} does not"
+        raise DescriptionError(Problem("there is no such file", file=PLANT_FILE, allowed=allowed, nearest=near))
     whole = assemble(folder)
     plant = validate(Plant, whole.data, whole.positions, also=whole.problems)
     barometric_pressure = site_pressure(plant)

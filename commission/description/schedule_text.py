@@ -2,12 +2,9 @@
 
 from __future__ import annotations
 
-import json
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from commission.description.positions import DescriptionError
-from commission.description.reading import read_yaml
 from commission.description.starting import HINT
 
 _WIDTH = 110
@@ -106,12 +103,17 @@ def scalar(text: str) -> str:
     safe_start = text[:1] not in _NOT_FIRST or number
     if text == text.strip() and text.isprintable() and safe_start and not set(text) & _NEVER_PLAIN:
         return text
-    quoted = json.dumps(text, ensure_ascii=False)
-    try:
-        same = read_yaml(f"a: {quoted}").data == {"a": text}
-    except DescriptionError:
-        same = False
-    return quoted if same else json.dumps(text)
+    return '"' + "".join(map(_escaped, text)) + '"'
+
+
+def _escaped(character: str) -> str:
+    """A character inside double quotes (YAML 1.1, 5.6)."""
+    if character in '"\\':
+        return f"\\{character}"
+    code = ord(character)
+    if character.isprintable():
+        return character
+    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}" if code < 0x10000 else f"\\U{code:08x}"
 
 
 def _comment(text: str) -> str:

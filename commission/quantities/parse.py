@@ -185,6 +185,8 @@ def _explain_unit(spelling: str, number: float, kind: Kind) -> tuple[str, str | 
     """Why this unit does not do here, what to write, and the nearest spelling where the message names none."""
     others = kinds_of(spelling)
     shown = shorten(spelling, 40)
+    if "Â" in spelling or "â" in spelling:
+        return "the unit is garbled; save the file in the encoding UTF-8 and write it again", None
     hint = _HINTS.get((kind, "".join(spelling.casefold().split())))
     if hint:
         return hint, None

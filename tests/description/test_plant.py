@@ -73,6 +73,10 @@ def test_a_folder_without_description(tmp_path: Path) -> None:
     with pytest.raises(DescriptionError) as caught:
         load_plant(tmp_path)
     assert (caught.value.problems[0].file, caught.value.problems[0].message) == ("plant.yaml", "there is no such file")
+    (tmp_path / "plant.yml").write_text("plant: {}", encoding="utf-8")
+    with pytest.raises(DescriptionError) as caught:
+        load_plant(tmp_path)
+    assert caught.value.problems[0].nearest == "plant.yml"
 
 
 def test_instruments_in_si(load: Load) -> None:

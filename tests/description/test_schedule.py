@@ -3,6 +3,8 @@
 from pathlib import Path
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from commission.description import DescriptionError, from_schedule, load_plant
 from commission.description.reading import read_yaml
@@ -159,36 +161,20 @@ def test_known_headings_are_many_and_mean_one_thing() -> None:
     assert known["tag"] == "id"
 
 
-@pytest.mark.parametrize(
-    "text",
-    [
-        "a",
-        "a: b",
-        "#x",
-        "- y",
-        "-8 °C",
-        "a #b",
-        "[x]",
-        "it's",
-        '"q"',
-        "&x",
-        "!t",
-        "",
-        " a ",
-        "85 %",
-        "%x",
-        "a\nb",
-        "C:\\d",
-        "no",
-        "*",
-        "\u2028",
-        "x: {y}",
-        "@a",
-        "|",
-        "\x7f",
-    ],
-)
+HOSTILE = (
+    "a", "a: b", "#x", "- y", "-8 °C", "a #b", "[x]", "it's", '"q"', "&x", "!t", "", " a ", "85 %", "%x", "a\nb",
+    "C:\\d", "no", "*", "\u2028", "x: {y}", "@a", "|", "\x7f", "- 1", "-1", "? a", "=", "~", "<<",
+)  # fmt: skip
+
+
+@pytest.mark.parametrize("text", HOSTILE)
 def test_any_text_reads_back_from_what_is_written(text: str) -> None:
     """A cell of the schedule arrives in the description as it was, whatever it holds."""
     assert read_yaml(f"{{a: {scalar(text)}, b: [{scalar(text)}]}}").data == {"a": text, "b": [text]}
     assert read_yaml(f"a: {scalar(text)}").data == {"a": text}
+
+
+@given(st.text(max_size=30))
+def test_all_text_reads_back(text: str) -> None:
+    """No text breaks out of the line on which it is written."""
+    assert read_yaml(f"{{a: {scalar(text)}, b: [{scalar(text)}]}}").data == {"a": text, "b": [text]}

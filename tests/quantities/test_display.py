@@ -36,9 +36,9 @@ def test_text(system: str, kind: Kind, value: float, text: str) -> None:
     system=st.sampled_from(["metric", "us_customary"]),
 )
 def test_what_is_shown_reads_back(value: float, kind: Kind, system: str) -> None:
-    """Shown with nine digits and read again, a value of any kind is what it was, in both unit systems."""
+    """Shown with many digits and read again, a value of any kind is what it was, in both unit systems."""
     display = Display(system, BAROMETER)  # type: ignore[arg-type]  # sampled
-    text = display.text(value, kind, digits=9)
+    text = display.text(value, kind, digits=13)
     for shown, written in SHOWN.items():
         text = text.replace(shown, written)
     again = parse_pressure(text).absolute(BAROMETER) if kind is Kind.PRESSURE else parse(text, kind)

@@ -126,6 +126,7 @@ def test_gauge_becomes_absolute_at_the_barometer_of_the_site() -> None:
         ("True", Kind.NUMBER, "a number is wanted", None),
         ("3.2 kW", Kind.NUMBER, "a plain number is wanted here, without 'kW'", None),
         ("5 kWh", Kind.POWER, "is a unit of energy; a power is wanted", None),
+        ("5 Â°C", Kind.TEMPERATURE, "garbled", None),
         ("5 tons", Kind.POWER, "refrigeration tons", None),
         ("5 MBtu/h", Kind.POWER, "thousand or million", None),
         ("٣ W", Kind.POWER, "a number is wanted", None),
