@@ -139,13 +139,15 @@ class _Collected:
         places = [(header[n], n, self.columns[c.quantity]) for n, c in self.mapping.columns.items()]
         nothing = {"", *self.mapping.missing}
         comma = self.mapping.decimal == "comma"
+        one_time = len(time_at) == 1
         line = self.mapping.rows_above_header + 1 + self.mapping.unit_rows
+        value = math.nan
         for row in reader:
             line += 1
             if not row or (len(row) == 1 and not row[0].strip()):
                 continue
             self.rows += 1
-            text = " ".join(row[n].strip() for n in time_at if n < len(row))
+            text = row[time_at[0]] if one_time and len(row) > time_at[0] else _joined(row, time_at)
             time = self.clock.read(text)
             if time is None:
                 self.bad_times += 1
@@ -153,29 +155,34 @@ class _Collected:
                 continue
             self.times.append(time)
             for at, name, values in places:
-                cell = row[at].strip() if at < len(row) else ""
-                values.append(self.number(cell, comma, nothing, line, name))
+                try:
+                    cell = row[at]
+                    value = float(cell.replace(",", ".") if comma else cell)
+                    # The difference is zero but for infinity and NaN, which no instrument shows.
+                    plain = value - value == 0.0 and not (comma and "." in cell)
+                except (ValueError, IndexError):
+                    plain = False
+                values.append(value if plain else self.number(row, at, comma, nothing, line, name))
 
-    def number(self, cell: str, comma: bool, nothing: set[str], line: int, name: str) -> float:
-        """The number in a cell; NaN where there is none."""
+    def number(self, row: list[str], at: int, comma: bool, nothing: set[str], line: int, name: str) -> float:
+        """What a cell holds that is no plain number: NaN, counted as missing or as unreadable."""
+        cell = row[at].strip() if at < len(row) else ""
         if cell in nothing:
             self.missing += 1
-            return math.nan
-        plain = cell.replace(",", ".") if comma else cell
-        try:
-            value = float(plain) if not (comma and "." in cell) else math.nan
-        except ValueError:
-            value = math.nan
-        if not math.isfinite(value):
+        else:
             self.unreadable += 1
-            self.note(line, f"{name}: this is no number with a decimal {self.mapping.decimal}", cell)
-            return math.nan
-        return value
+            self.note(line, f"{name}: this is no number with a decimal {'comma' if comma else 'point'}", cell)
+        return math.nan
 
     def note(self, line: int, message: str, text: str) -> None:
         """Keep one problem, the first twenty of them."""
         if len(self.problems) < MOST_LISTED:
             self.problems.append(Problem(message, self.name, line, 1, value=shorten(text)))
+
+
+def _joined(row: list[str], columns: list[int]) -> str:
+    """Date and time of day from their own columns, as one text."""
+    return " ".join([row[n].strip() for n in columns if n < len(row)])
 
 
 def _in_order(name: str, mapping: LoggerMapping, barometric_pressure: float, found: _Collected) -> Log:

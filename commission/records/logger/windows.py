@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import itertools
 import math
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
@@ -69,9 +68,10 @@ def whole_cycles(log: Log, count: int = 3, key: str = "power_input") -> tuple[Wi
         return ()
     runs = np.where(np.isfinite(values), values, low) > 0.5 * (low + high)
     starts = _starts(log.times, runs)
+    sums = _running_sums(log)
     found = []
     for first, last in zip(starts[:-count], starts[count:], strict=False):
-        window = _window(log, first, last)
+        window = _window(log, first, last, sums)
         if window is not None:
             inside = (log.times >= first) & (log.times < last)
             share = float(np.mean(runs[inside]))
@@ -99,29 +99,50 @@ def _windows(log: Log, length: float, limits: str, liquid_sides: frozenset[str])
         return
     start, last = float(log.times[0]), float(log.times[-1])
     step = length / 4.0
+    sums = _running_sums(log)
     for n in range(max(0, math.floor((last - length - start) / step + 1e-9) + 1)):
-        window = _window(log, start + n * step, start + n * step + length)
+        window = _window(log, start + n * step, start + n * step + length, sums)
         if window is not None:
             score = _score(log, window, limits, liquid_sides)
             yield Window(window.start, window.end, window.means, window.parts, score)
 
 
-def _window(log: Log, start: float, end: float) -> Window | None:
+@dataclass(frozen=True, slots=True)
+class _Sums:
+    """Running sums of one quantity about `middle`, and how many values they count: any mean is one subtraction."""
+
+    middle: float
+    sums: NDArray[np.float64]
+    counts: NDArray[np.int64]
+
+
+def _running_sums(log: Log) -> dict[str, _Sums]:
+    import numpy as np
+
+    found = {}
+    for key, values in log.values.items():
+        there = np.isfinite(values)
+        middle = float(np.mean(values[there])) if there.any() else 0.0
+        sums = np.concatenate(([0.0], np.cumsum(np.where(there, values - middle, 0.0))))
+        found[key] = _Sums(middle, sums, np.concatenate(([0], np.cumsum(there))))
+    return found
+
+
+def _window(log: Log, start: float, end: float, sums: Mapping[str, _Sums]) -> Window | None:
     """Means over a stretch; None where it holds a gap or a quantity has a part without values."""
     import numpy as np
 
     if any(g.start < end and g.end > start for g in log.report.gaps):
         return None
     edges = np.searchsorted(log.times, np.linspace(start, end, PARTS + 1))
-    if int(np.min(np.diff(edges))) < 1:
-        return None
     means, parts = {}, {}
-    for key, values in log.values.items():
-        pieces = [values[a:b] for a, b in itertools.pairwise(edges)]
-        if not all(bool(np.any(np.isfinite(p))) for p in pieces):
+    for key, running in sums.items():
+        counts = np.diff(running.counts[edges])
+        if int(counts.min()) < 1:
             return None
-        parts[key] = tuple(float(np.nanmean(p)) for p in pieces)
-        means[key] = float(np.nanmean(values[edges[0] : edges[-1]]))
+        totals = np.diff(running.sums[edges])
+        parts[key] = tuple((running.middle + totals / counts).tolist())
+        means[key] = running.middle + float(totals.sum() / counts.sum())
     return Window(start, end, means, parts)
 
 
