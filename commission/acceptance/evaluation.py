@@ -133,7 +133,7 @@ def evaluate(
     if prediction is not None:
         warnings += prediction.warnings
         warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
-    inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet)
+    inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet, used)
     derived = dict(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
     derived.update(_unbalances(loaded, [*asked, *read], measured))
     have = {**measured, **{k: d.measured for k, d in derived.items()}}

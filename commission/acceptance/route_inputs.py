@@ -38,7 +38,7 @@ class RouteInputs:
 def live(loaded: LoadedPlant, model: SystemModel, prediction: Prediction | None) -> RouteInputs:
     """The inputs by the model as it stands, with their parts under the causes of the model."""
     found = model.assumptions.get(SHELL) or loaded.assumptions(model.system_id).get(SHELL)
-    shell = shell_share(found.value, found.standard_uncertainty, found.source) if found else shell_share()
+    shell = shell_share(found.value, found.standard_uncertainty, found.source, found.mark) if found else shell_share()
     gain = fans = evaporator = None
     expected: Mapping[str, object] = prediction.expected if prediction is not None else {}
     if prediction is not None and {"suction_temperature", "evaporating_temperature", "superheat"} <= set(expected):
@@ -54,19 +54,31 @@ def live(loaded: LoadedPlant, model: SystemModel, prediction: Prediction | None)
     return RouteInputs(shell, gain, fans, evaporator)
 
 
-def from_sheet(sheet: TestSheet) -> RouteInputs:
-    """The inputs that were frozen, each with one component."""
+def from_sheet(sheet: TestSheet, conditions: Mapping[str, Measured]) -> RouteInputs:
+    """The inputs that were frozen, each with one component.
 
-    def one(name: str) -> Measured | None:
+    Fans and the warming of the suction line change over the range of the day: their values are those of the frozen
+    expectations at the measured condition where the sheet holds these, and those of the middle of the range where not.
+    """
+    expected, _ = sheet.expectations(conditions)
+    at_day = {k: e.value for k, e in expected.items()}
+
+    def one(name: str, plus: tuple[str, ...], minus: tuple[str, ...] = ()) -> Measured | None:
         if name not in sheet.route_inputs:
             return None
         value, standard = sheet.route_inputs[name]
+        if set(plus + minus) <= set(at_day):
+            value = sum(at_day[k] for k in plus) - sum(at_day[k] for k in minus)
         component = Component(name, standard, source="the frozen test sheet", cause=f"sheet: {name}")
         return Measured(name, value, Budget((component,) if standard else ()))
 
     value, standard = sheet.route_inputs.get(SHELL, (None, None))
-    shell = shell_share(value, standard, "the frozen test sheet")
-    return RouteInputs(shell, one(GAIN), one(FANS), one(EVAPORATOR_FAN))
+    return RouteInputs(
+        shell_share(value, standard, "the frozen test sheet", "frozen"),
+        one(GAIN, ("suction_temperature",), ("evaporating_temperature", "superheat")),
+        one(FANS, ("fan_power",)),
+        one(EVAPORATOR_FAN, ("cooling_capacity",), ("net_cooling_capacity",)),
+    )
 
 
 def _expected(model: SystemModel, prediction: Prediction, name: str, key: str) -> Measured:

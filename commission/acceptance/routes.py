@@ -79,16 +79,19 @@ def _relative(route: str, part: str, name: str) -> Measured:
     return Measured(name, 1.0, Budget((component,) if component.value else ()))
 
 
-def shell_share(value: float | None = None, standard: float | None = None, source: str = "") -> Measured:
+def shell_share(
+    value: float | None = None, standard: float | None = None, source: str = "", mark: str = ""
+) -> Measured:
     """Share of the electric power that leaves through the shell, from the model's assumption or from the library.
 
     It goes under the cause of the model's assumption, so that a deviation from the model keeps what both share.
     """
     entry = library()["compressor heat balance"]["shell"]
     if value is None or standard is None:
-        value, standard, source = float(entry["value"]), float(entry["standard"]), entry["source"]
+        value, standard = float(entry["value"]), float(entry["standard"])
+        source, mark = entry["source"], entry["mark"]
     component = Component(
-        "heat lost by the compressor shell", standard, "rectangular", source=source, mark=entry["mark"],
+        "heat lost by the compressor shell", standard, "rectangular", source=source, mark=mark,
         cause=model_cause(SHELL), of="shell heat loss share", remedy=entry["remedy"],
     )  # fmt: skip
     return Measured("shell heat loss share", value, Budget((component,) if standard else ()))

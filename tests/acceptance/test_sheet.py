@@ -184,3 +184,22 @@ def test_later_changes_never_move_a_frozen_verdict(
     assert before.guarantees[0].measured is not None
     assert today.guarantees[0].measured.value < 0.97 * before.guarantees[0].measured.value
     assert {k: e.value for k, e in before.expectations.items()} == {k: e.value for k, e in after.expectations.items()}
+
+
+def test_measured_capacity_is_the_same_with_and_without_a_sheet(tmp_path: Path) -> None:
+    """Where the head pressure is held the fans draw less on a cold day: at every grid point the route gives the same
+    capacity with the sheet as without."""
+    text = COLD_ROOM.replace(
+        "    receiver:", "    controls: {head_pressure: {by: fan speed, hold: 38 °C}}\n    receiver:"
+    )
+    plant = write_plant(tmp_path / "held", text)
+    model = fit(plant, "cold-room")
+    frozen_sheet = make_sheet(plant, model, {SINK: (283.15, 295.15, 307.15)})
+    powers = []
+    for sink in (283.15, 295.15, 307.15):
+        powers.append(model.predict({SINK: sink}).expected["fan_power"].value)
+        readings = visit(plant, model, {SINK: sink})
+        live, frozen = (judge(plant, model, *readings, "trim", s) for s in (None, frozen_sheet))
+        for a, b in zip(live.routes, frozen.routes, strict=True):
+            assert a.measured.value == pytest.approx(b.measured.value, rel=1e-5)
+    assert powers[0] < 0.5 * powers[2]
