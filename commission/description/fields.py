@@ -93,7 +93,6 @@ TemperatureDifference = Annotated[float, *_quantity(Kind.TEMPERATURE_DIFFERENCE,
 PressureDifference = Annotated[float, *_quantity(Kind.PRESSURE_DIFFERENCE, positive=True)]
 Power = Annotated[float, *_quantity(Kind.POWER, "0 W", "1000 MW")]
 Capacity = Annotated[float, *_quantity(Kind.POWER, positive=True)]
-Energy = Annotated[float, *_quantity(Kind.ENERGY, positive=True)]
 Mass = Annotated[float, *_quantity(Kind.MASS, positive=True)]
 MassFlow = Annotated[float, *_quantity(Kind.MASS_FLOW, positive=True)]
 Volume = Annotated[float, *_quantity(Kind.VOLUME, positive=True)]

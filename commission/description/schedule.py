@@ -7,7 +7,7 @@ message names row, column and heading of the schedule.
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from functools import cache
 from importlib.resources import files
@@ -110,7 +110,7 @@ def from_schedule(schedule: Path | str, folder: Path | str) -> tuple[Path, ...]:
         InputError: a file that is there already, or a folder that cannot be written to.
     """
     schedule, folder = Path(schedule), Path(folder)
-    table = read_table(schedule, schedule.name)
+    table = read_table(schedule, schedule.name, _is_heading)
     sheet = _read(table, schedule.name)
     if not sheet.systems:
         raise DescriptionError(*bounded(sheet.problems))
@@ -121,8 +121,21 @@ def from_schedule(schedule: Path | str, folder: Path | str) -> tuple[Path, ...]:
         problems = problems_of_meaning(Looked(plant, sheet.positions, site_pressure(plant)))
     if problems:
         raise DescriptionError(*bounded([_with_heading(p, sheet) for p in problems]))
-    text = description_text(data, schedule.name, sheet.lines, sheet.notes)
+    titles = [" ".join(cell.text for cell in row if cell.text) for row in table.titles]
+    text = description_text(data, schedule.name, sheet.lines, sheet.notes, titles)
     return write_new(folder, {PLANT_FILE: text, SCHEMA_FILE: schema_text()})
+
+
+def _is_heading(texts: Sequence[str]) -> bool:
+    """A row of headings names the systems and at least one more thing that is known."""
+    keys = {columns_by_heading().get(_plain(_split(text)[0])) for text in texts} - {None}
+    return "id" in keys and len(keys) > 1
+
+
+def _split(heading: str) -> tuple[str, str]:
+    """A heading and the unit in its brackets."""
+    match = _BRACKETS.fullmatch(heading)
+    return (match[1], match[2].strip()) if match else (heading, "")
 
 
 def _with_heading(problem: Problem, sheet: _Sheet) -> Problem:
@@ -174,8 +187,7 @@ def _columns(table: Table, sheet: _Sheet) -> tuple[list[Column], int]:
     units = _unit_row(table)
     found: list[Column] = []
     for number, cell in enumerate(table.heading):
-        match = _BRACKETS.fullmatch(cell.text)
-        word, unit = (match[1], match[2].strip()) if match else (cell.text, "")
+        word, unit = _split(cell.text)
         if units and number < len(units) and units[number].text:
             unit = units[number].text.strip("[]() ")
         key = known.get(_plain(word))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from typing import Any
 
 from commission.description.starting import HINT
@@ -31,15 +31,20 @@ _AS_WRITTEN = {
 
 
 def description_text(
-    data: Mapping[str, Any], schedule: str, lines: Mapping[str, int], notes: Mapping[str, list[str]]
+    data: Mapping[str, Any],
+    schedule: str,
+    lines: Mapping[str, int],
+    notes: Mapping[str, list[str]],
+    titles: Sequence[str] = (),
 ) -> str:
     """The text of `plant.yaml`.
 
     `lines` says in which line of the schedule each system stands; `notes` are the cells of columns that a description
-    has no key for, kept as comments.
+    has no key for, kept as comments, and so are the `titles` above the headings.
     """
     origin = f"# Made from {_comment(schedule)}, one system for each row."
     head = f"{HINT}#\n{origin} Look through it, then add what is known.\n"
+    head += "".join(f"# {_comment(title)}\n" for title in titles)
     parts = [head, "plant:\n", *_block(data["plant"], 2)]
     such_as = _AS_WRITTEN[data["plant"]["units"]]
     parts.append(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -13,6 +14,7 @@ from commission.errors import Problem
 
 MAX_ROWS = 2000
 MAX_COLUMNS = 200
+_MOST_TITLES = 20
 _DELIMITERS = (";", "\t", ",")
 
 
@@ -26,15 +28,22 @@ class Cell:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A heading row and the rows below it that hold anything; cells beyond the headings are refused by the reader."""
+    """A heading row, the rows below it that hold anything, and the titles that stand above it."""
 
     heading: tuple[Cell, ...]
     rows: tuple[tuple[Cell, ...], ...]
     content: bytes
+    titles: tuple[tuple[Cell, ...], ...] = ()
 
 
-def read_table(path: Path, file: str) -> Table:
+IsHeading = Callable[[Sequence[str]], bool]
+
+
+def read_table(path: Path, file: str, is_heading: IsHeading | None = None) -> Table:
     """Read a CSV with a heading row: UTF-8 (or UTF-16 with its mark), separated by semicolon, tabulator or comma.
+
+    `is_heading` tells a heading row from the titles that may stand above it, in the first lines; without it, or where
+    none is one, the first row that holds anything is the heading.
 
     Raises:
         DescriptionError: not readable, no heading, rows longer than the heading, or too large.
@@ -44,18 +53,23 @@ def read_table(path: Path, file: str) -> Table:
     lines = text.splitlines()
     if not lines or not text.strip():
         raise DescriptionError(Problem("the file is empty", file, 1, 1))
-    delimiter = _delimiter(next(line for line in lines if line.strip()))
+    delimiter, above = _start(lines, is_heading)
     reader = csv.reader(io.StringIO(text, newline=""), delimiter=delimiter, strict=True)
     found: list[tuple[Cell, ...]] = []
+    titles: list[tuple[Cell, ...]] = []
     problems: list[Problem] = []
     line = 1
     try:
         for row in reader:
             cells = _cells(row, lines, line, delimiter, file)
+            title = line <= above
             line = reader.line_num + 1
             while cells and not cells[-1].text:
                 cells = cells[:-1]
             if not cells:
+                continue
+            if title:
+                titles.append(cells)
                 continue
             if len(found) > MAX_ROWS or len(cells) > MAX_COLUMNS:
                 limit = f"{MAX_ROWS} rows and {MAX_COLUMNS} columns"
@@ -69,7 +83,24 @@ def read_table(path: Path, file: str) -> Table:
         raise DescriptionError(*problems, Problem(f"this is not CSV: {error}", file, line, 1)) from None
     if problems:
         raise DescriptionError(*problems)
-    return Table(found[0], tuple(found[1:]), content)
+    return Table(found[0], tuple(found[1:]), content, tuple(titles))
+
+
+def _start(lines: list[str], is_heading: IsHeading | None) -> tuple[str, int]:
+    """The separator, and how many lines of titles stand above the heading."""
+    for number, line in enumerate(lines[:_MOST_TITLES] if is_heading else ()):
+        for delimiter in _DELIMITERS:
+            if is_heading is not None and is_heading(_split(line, delimiter)):
+                return delimiter, number
+    return _delimiter(next(line for line in lines if line.strip())), 0
+
+
+def _split(line: str, delimiter: str) -> list[str]:
+    """The cells of one line, or none where it is no whole row of a CSV."""
+    try:
+        return next(csv.reader([line], delimiter=delimiter), [])
+    except csv.Error:
+        return []
 
 
 def _text(content: bytes, file: str) -> str:

@@ -107,6 +107,9 @@ GOOD = (
         (GOOD.replace("3 kW,1.5 kW", ",", 1), "needs a result", 2, 1, None),
         (GOOD.replace("1.5 kW", "1.5 kW,9"), "no heading above", 2, 42, ""),
         ("", "empty", 1, 1, ""),
+        ("x" * 300_000 + "," + GOOD, "not CSV", 1, 1, ""),
+        (GOOD.replace("R-290", "R" * 300_000), "not CSV", 2, 1, ""),
+        (GOOD.replace("R-290", "R" * 3000), "not in the register", 2, 13, "column Refrigerant"),
     ],
 )
 def test_faults_of_a_schedule(
@@ -149,6 +152,20 @@ def test_files_as_spreadsheets_save_them(tmp_path: Path) -> None:
     with pytest.raises(InputError) as again:
         from_schedule(SCHEDULES / "us.csv", tmp_path / "a")
     assert "there already" in again.value.problems[0].message
+
+
+def test_titles_above_the_headings_are_kept_as_comments(tmp_path: Path) -> None:
+    """Spreadsheets begin with the name of the project; places still count from the top of the file."""
+    schedule = tmp_path / "s.csv"
+    schedule.write_text(f'"Schedule of machines; rev. 2, draft"\nProject,Lodge\n\n{GOOD}', encoding="utf-8")
+    from_schedule(schedule, tmp_path / "out")
+    text = (tmp_path / "out/plant.yaml").read_text(encoding="utf-8")
+    assert "# Schedule of machines; rev. 2, draft\n# Project Lodge\n" in text
+    assert "# line 5 of the schedule" in text
+    schedule.write_text(f"Title\n{GOOD.replace('32 °C', '32')}", encoding="utf-8")
+    with pytest.raises(DescriptionError) as caught:
+        from_schedule(schedule, tmp_path / "more")
+    assert (caught.value.problems[0].line, caught.value.problems[0].path) == (3, "column Sink inlet")
 
 
 def test_known_headings_are_many_and_mean_one_thing() -> None:
