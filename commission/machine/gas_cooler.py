@@ -75,9 +75,7 @@ def outlet_state(refrigerant: Refrigerant, temperature: float, pressure: float) 
     return refrigerant.liquid(temperature, pressure)
 
 
-def needed_conductance(
-    refrigerant: Refrigerant, pressure: float, flow: float, inlet: float, outlet: State, sink: Stream
-) -> float:
+def needed_conductance(refrigerant: Refrigerant, flow: float, inlet: float, outlet: State, sink: Stream) -> float:
     """Conductance in W/K that brings gas of enthalpy `inlet` (J/kg) to `outlet` against the medium, in counterflow.
 
     Segments of equal heat along the isobar. A crossing of temperatures is bounded, not refused: the conductance grows
@@ -87,10 +85,10 @@ def needed_conductance(
     water = sink.inlet(heat)
     last = outlet.T - water
     total = _barrier(last)
+    part = (inlet - outlet.h) / NODES
+    gas = refrigerant.isobar_temperatures(outlet, [outlet.h + n * part for n in range(1, NODES + 1)])
     for n in range(1, NODES + 1):
-        share = n / NODES
-        gas = refrigerant.throttled(pressure, outlet.h + share * (inlet - outlet.h)).T
-        difference = gas - water - share * heat / sink.capacity_rate
+        difference = gas[n - 1] - water - n / NODES * heat / sink.capacity_rate
         total += 1 / _log_mean(_open(last), _open(difference)) + _barrier(difference)
         last = difference
     return total * heat / NODES

@@ -81,6 +81,18 @@ class GasCoolerCircuit(Circuit):
 
     machine: Transcritical
 
+    def __init__(self, machine: Transcritical, media: Media) -> None:
+        super().__init__(machine, media)
+        self._cycles: dict[tuple[float, float], tuple[Compression, float, float]] = {}
+        self._high: dict[tuple[float, float], tuple[float, State]] = {}
+
+    def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
+        """As of any circuit, kept: both residuals ask for it."""
+        key = evaporating, second
+        if key not in self._cycles:
+            self._cycles[key] = super().cycle(evaporating, second)
+        return self._cycles[key]
+
     def pressure(self, evaporating: float, outlet: float) -> float:
         """High pressure in Pa."""
         m = self.machine
@@ -88,17 +100,18 @@ class GasCoolerCircuit(Circuit):
 
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
         """Pressure at the discharge port and state at the gas-cooler outlet."""
-        p = self.pressure(evaporating, second)
-        return p, outlet_state(self.machine.refrigerant, second, p)
+        key = evaporating, second
+        if key not in self._high:
+            p = self.pressure(evaporating, second)
+            self._high[key] = p, outlet_state(self.machine.refrigerant, second, p)
+        return self._high[key]
 
     def conductance(self, evaporating: float, outlet: float) -> float:
         """Conductance in W/K that the gas cooler would need."""
         compression, _, heat = self.cycle(evaporating, outlet)
-        p, end = self.high_side(evaporating, outlet)
+        end = self.high_side(evaporating, outlet)[1]
         sink = self.media.sink.settled(heat)
-        return needed_conductance(
-            self.machine.refrigerant, p, compression.flow, compression.discharge_enthalpy, end, sink
-        )
+        return needed_conductance(self.machine.refrigerant, compression.flow, compression.discharge_enthalpy, end, sink)
 
     def gap(self, evaporating: float, outlet: float) -> float:
         """Conductance that is needed over the one there is, as a logarithm."""

@@ -8,7 +8,7 @@ those fail on blends. Outside the ranges a `PropertyRangeError` says what the li
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from functools import cache, cached_property
 from typing import TYPE_CHECKING
 
@@ -224,6 +224,16 @@ class Refrigerant(Saturation):
             return self._liquid_from_enthalpy(isobar.bubble, h)
         return isobar.state(x)
 
+    def isobar_temperatures(self, start: State, enthalpies: Sequence[float]) -> list[float]:
+        """Temperatures (K) at the pressure of `start` and rising `enthalpies` (J/kg), from `start` (single phase) up.
+
+        Raises:
+            PropertyRangeError: a state outside the range.
+        """
+        from commission.properties.isobar import isobar_temperatures
+
+        return isobar_temperatures(self, self._equation, start, enthalpies)
+
     def mean_evaporating_temperature(self, p: float, h_in: float) -> float:
         """Temperature (K) of evaporation at `p` (Pa), averaged over the heat taken up from `h_in` to the dew point.
 
@@ -282,8 +292,13 @@ class Refrigerant(Saturation):
         return State(state.T, state.p, state.h, state.s, state.rho, state.quality, (note,))
 
     def _liquid_from_enthalpy(self, bubble: SaturationState, h: float) -> State:
+        from commission.properties.isobar import liquid_at_enthalpy
+
         cp = self._equation.at(bubble.rho, bubble.T).cp
-        point = self._equation.solve(bubble.p, "h", h, bubble.rho, bubble.T + (h - bubble.h) / cp)
+        try:
+            point = self._equation.solve(bubble.p, "h", h, bubble.rho, bubble.T + (h - bubble.h) / cp)
+        except PropertyRangeError:
+            return liquid_at_enthalpy(self, bubble.p, h, bubble.T)
         if not self.T_low <= point.T:
             raise PropertyRangeError(self.name, f"liquid colder than {celsius(self.T_low)}, where the equation ends")
         return _state(point)

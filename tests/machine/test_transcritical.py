@@ -106,8 +106,7 @@ def test_a_crossing_needs_an_endless_gas_cooler() -> None:
     sink = _media(293.15).sink
     inlet = fluid.vapour(363.15, 95e5).h if fluid.p_critical > 95e5 else fluid.supercritical(363.15, 95e5).h
     needed = [
-        needed_conductance(fluid, 95e5, 0.01, inlet, outlet_state(fluid, t, 95e5), sink)
-        for t in (303.15, 295.15, 291.15)
+        needed_conductance(fluid, 0.01, inlet, outlet_state(fluid, t, 95e5), sink) for t in (303.15, 295.15, 291.15)
     ]
     assert needed[0] < needed[1] < needed[2]
     assert needed[2] > 6 * needed[0]
