@@ -4,6 +4,7 @@ from commission.records.disk import ExistsError, FolderError, digest_of_file
 from commission.records.drift import Drift, Family, drifts, families, find_drifts
 from commission.records.filed import FiledBlock, FiledRecord, FiledRecordError, RecordsFolder, read_filed, read_folder
 from commission.records.filing import check_files, file_record, file_sheet
+from commission.records.form import record_form
 from commission.records.freeze import guarantee_sentence, versions
 from commission.records.history import (
     Point,
@@ -63,6 +64,7 @@ __all__ = [
     "read_record",
     "recompute",
     "recomputed_series",
+    "record_form",
     "records_folder",
     "series",
     "versions",

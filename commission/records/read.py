@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 from commission.description import LoadedPlant, Positions, read_yaml, validate
 from commission.description.checking import bounded
 from commission.description.positions import DescriptionError
-from commission.errors import InputError
+from commission.errors import InputError, Problem
 from commission.errors import nearest as nearest_word
 from commission.quantities import NOMENCLATURE
 from commission.records.answers import check_answers
@@ -23,6 +23,7 @@ if TYPE_CHECKING:
     from commission.checklists import Item
 
 RECORDS = "records"
+_NO_STAGE = "the checklist of this system has no such stage"
 EITHER: tuple[str, ...] = ("heat_source_outlet_temperature", "heat_sink_outlet_temperature")
 """A condition where a controller holds it, an answer of the plant where it does not."""
 READING_KEYS: tuple[str, ...] = tuple(k for k in NOMENCLATURE if k not in CONDITION_KEYS or k in EITHER)
@@ -97,17 +98,27 @@ def _shown(path: Path, loaded: LoadedPlant) -> str:
         return str(path)
 
 
+def known_stages(loaded: LoadedPlant, system: str, stage: str) -> tuple[Item, ...]:
+    """The items of one stage of a system's checklist.
+
+    Raises:
+        RecordError: the checklist has no such stage, with the nearest one.
+    """
+    from commission.checklists import stages
+
+    found = {s.id: tuple(s.items) for s in stages(loaded, system)}
+    if stage not in found:
+        near, allowed = nearest_word(stage, found), ", ".join(found)
+        raise RecordError(Problem(_NO_STAGE, value=stage, allowed=allowed, nearest=near))
+    return found[stage]
+
+
 def _items(loaded: LoadedPlant, file: RecordFile, reader: ReadingsReader) -> dict[str, Sequence[Item]]:
     from commission.checklists import stages
 
     found: dict[str, Sequence[Item]] = {stage.id: tuple(stage.items) for stage in stages(loaded, file.system)}
     if file.stage not in found:
-        reader.problem(
-            ("stage",),
-            "the checklist of this system has no such stage",
-            allowed=", ".join(found),
-            nearest=nearest_word(file.stage, found),
-        )
+        reader.problem(("stage",), _NO_STAGE, allowed=", ".join(found), nearest=nearest_word(file.stage, found))
     return found
 
 

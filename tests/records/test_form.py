@@ -1,0 +1,68 @@
+"""The form of a record: what a person fills in is a record."""
+
+from __future__ import annotations
+
+import re
+from pathlib import Path
+
+import pytest
+
+from commission.description import LoadedPlant
+from commission.errors import InputError
+from commission.prediction import SystemModel
+from commission.quantities import NOMENCLATURE, Kind
+from commission.records import RecordError, read_record, record_form
+
+FILLED = {
+    Kind.TEMPERATURE: "5 °C", Kind.PRESSURE: "9 bar g", Kind.POWER: "1.6 kW", Kind.TEMPERATURE_DIFFERENCE: "6 K",
+    Kind.RATIO: "85 %", Kind.VOLUME_FLOW: "2100 m3/h",
+}  # fmt: skip
+
+
+def test_a_form_filled_in_is_a_record(tmp_path: Path, loaded: LoadedPlant, model: SystemModel) -> None:
+    """Every open place filled, and the form reads as a record with an instrument for every reading."""
+    text = record_form(loaded, "store", "visit", model)
+
+    def fill(match: re.Match[str]) -> str:
+        return f"{match[1]}: {{value: {FILLED[NOMENCLATURE[match[1]].kind]}"
+
+    text = re.sub(r"(\w+): \{value: ", fill, text)
+    text = text.replace("started: ", "started: 2026-05-14T10:20+01:00 ").replace(
+        "since_start: ", "since_start: 45 min "
+    )
+    text = text.replace("since_defrost: ", "since_defrost: 90 min ").replace("name: ", "name: somebody")
+    text = re.sub(r"  visit.*\n", "", text).replace("answers:", "answers: {visit.clean: yes}")
+    path = tmp_path / "form.yaml"
+    path.write_text(text, encoding="utf-8")
+    record = read_record(path, loaded)
+    assert set(record.readings) >= {
+        "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "power_input",
+    }  # fmt: skip
+    assert record.readings["suction_pressure"].instrument == "low gauge"
+    assert record.readings["discharge_pressure"].instrument == "high gauge"
+    assert record.conditions["heat_sink_inlet_temperature"].instrument == "air probe"
+
+
+def test_a_form_left_open_names_every_open_place(tmp_path: Path, loaded: LoadedPlant, model: SystemModel) -> None:
+    """An empty form is refused with a problem at each place, so that nothing unread is filed as read."""
+    path = tmp_path / "form.yaml"
+    path.write_text(record_form(loaded, "store", "visit", model), encoding="utf-8")
+    with pytest.raises(RecordError) as caught:
+        read_record(path, loaded)
+    assert {"started", "people.operator.name"} <= {p.path for p in caught.value.problems}
+
+
+def test_every_item_of_the_stage_stands_in_the_form(loaded: LoadedPlant) -> None:
+    """Items come with the sort of answer that they ask for; without a model only named instruments are listed."""
+    text = record_form(loaded, "store", "visit")
+    assert "visit.clean: {answer: , reason: }  # yes, no or not applicable; See that it is clean." in text
+    assert "visit.setting: {answer: , reason: }  # bar g" in text
+    assert "discharge_pressure: {value: , instrument: high gauge" in text
+
+
+@pytest.mark.parametrize(("system", "stage"), [("stor", "visit"), ("store", "vist")])
+def test_an_unknown_system_or_stage_names_the_nearest(loaded: LoadedPlant, system: str, stage: str) -> None:
+    """A slip is met with the word that is known."""
+    with pytest.raises(InputError) as caught:
+        record_form(loaded, system, stage)
+    assert caught.value.problems[0].nearest in ("store", "visit")
