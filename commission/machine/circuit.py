@@ -29,7 +29,8 @@ class SuctionLine:
 class Parts:
     """The parameters of a machine; temperature differences in K. A fault is another value of one of them.
 
-    `suction_regulator` is the pressure (Pa) that a crankcase pressure regulator lets through at most.
+    `suction_regulator` is the pressure (Pa) that a crankcase pressure regulator lets through at most;
+    `gas_pressure` the pressure (Pa) that gas which does not condense adds on the high side, 0 in a healthy circuit.
     """
 
     refrigerant: Refrigerant
@@ -41,6 +42,7 @@ class Parts:
     suction_line: SuctionLine = SuctionLine()
     discharge_line_loss: float = 0.0
     suction_regulator: float | None = None
+    gas_pressure: float = 0.0
 
 
 class Circuit:

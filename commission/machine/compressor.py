@@ -85,7 +85,9 @@ class Compressor:
 
     `displacement` in m3/s at the speed in force; `volumetric_level` and `isentropic_level` multiply the shapes;
     `shell_loss` is the share of the electric power that leaves through the shell to the surroundings; `speed_loss` the
-    share of the isentropic efficiency that is lost at half speed, in proportion between.
+    share of the isentropic efficiency that is lost at half speed, in proportion between. `leak` is the share of the gas
+    that worn valves let back to the suction side, 0 in a healthy machine: it is compressed again, so that the power
+    stays and the flow falls.
     """
 
     displacement: float
@@ -94,6 +96,7 @@ class Compressor:
     shape: EfficiencyShape
     shell_loss: float = 0.0
     speed_loss: float = 0.0
+    leak: float = 0.0
 
     def compress(
         self, refrigerant: Refrigerant, suction: State, pressure: float, speed_share: float = 1.0
@@ -117,5 +120,8 @@ class Compressor:
         isentropic = level * self.shape.isentropic(ratio, work * suction.rho / suction.p, exponent)
         power = flow * work / isentropic
         loss = self.shell_loss * power
+        flow *= 1 - self.leak
+        volumetric *= 1 - self.leak
+        isentropic *= 1 - self.leak
         enthalpy = suction.h + (power - loss) / flow
         return Compression(flow, power, loss, enthalpy, work, ratio, volumetric, isentropic)

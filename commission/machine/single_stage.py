@@ -150,7 +150,7 @@ class _Circuit(Circuit):
             pressure = fluid.dew(condensing).p
             liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
             discharge = fluid.dew(condensing + m.discharge_line_loss).p if m.discharge_line_loss else pressure
-            self._high[condensing] = (discharge, liquid)
+            self._high[condensing] = (discharge + m.gas_pressure, liquid)
         return self._high[condensing]
 
     def sink_drive(self, condensing: float) -> float:

@@ -64,7 +64,8 @@ class Fans:
 
 @dataclass(frozen=True, slots=True)
 class Rated:
-    """The condition that levels belong to: media temperatures (K), expected heat (W), flows (m3/s), speed (1/s)."""
+    """The condition that levels belong to: media temperatures (K), expected heat (W), flows (m3/s), humidity,
+    speed (1/s)."""
 
     source_temperature: float
     sink_temperature: float
@@ -72,6 +73,7 @@ class Rated:
     sink_heat: float
     source_flow: float
     sink_flow: float
+    source_humidity: float
     speed: float | None = None
 
 
@@ -170,7 +172,6 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         NotCalculatedError: a stated rating cannot be, for example more heat than its air flow carries.
     """
     system = facts.system
-    wet = humidity(facts, a)
     stated_superheat = system.expansion.superheat if system.expansion else None
     superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
     line, surroundings = suction_line(facts, a, rated, superheat)
@@ -204,7 +205,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         machine=machine,
         fans=fans_of(facts, a, rated.source_heat, rated.sink_heat),
         rated=rated,
-        source_humidity=wet,
+        source_humidity=rated.source_humidity,
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
     )

@@ -10,9 +10,11 @@ from commission.errors import InputError, Problem, nearest
 from commission.prediction.building import Plan, once_through
 from commission.prediction.facts import Facts
 from commission.prediction.rated import Case
+from commission.properties import moist_air
 from commission.quantities import NOMENCLATURE
 
 KELVIN = 273.15
+HUMIDITY, WET_BULB = "heat_source_relative_humidity", "heat_source_wet_bulb"
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,9 +91,11 @@ def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> Condit
 
 
 def complete(
-    axes: Mapping[str, ConditionAxis], given: Mapping[str, float] | None
+    axes: Mapping[str, ConditionAxis], given: Mapping[str, float] | None, pressure: float = 101325.0
 ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
     """The whole condition, the keys filled from the rated one, and a warning for each value outside its range.
+
+    A wet bulb of the source air may stand in place of its relative humidity, at barometric `pressure` (Pa).
 
     Raises:
         InputError: a key that this system has no condition for, or a value that is no finite number.
@@ -99,6 +103,8 @@ def complete(
     given = dict(given or {})
     problems = []
     known = {*axes, *(_other_end(key) for key in axes)}
+    if HUMIDITY in axes:
+        known.add(WET_BULB)
     for key, value in given.items():
         if key not in known:
             problems.append(
@@ -113,6 +119,10 @@ def complete(
             problems.append(Problem("a condition must be a finite number", value=str(value), path=key))
     if problems:
         raise InputError(*problems)
+    wet = given.pop(WET_BULB, None)
+    if wet is not None:
+        dry = given.get("heat_source_inlet_temperature", axes["heat_source_inlet_temperature"].rated)
+        given[HUMIDITY] = moist_air(dry, pressure, wet_bulb=wet).relative_humidity
     whole: dict[str, float] = {}
     for key, axis in axes.items():
         other = _other_end(key)

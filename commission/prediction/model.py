@@ -17,7 +17,7 @@ from commission.prediction.facts import Facts, facts_of
 from commission.prediction.fitting import SCATTER, Fit, fit_system
 from commission.prediction.rated import reference
 from commission.properties import Refrigerant
-from commission.quantities import NOMENCLATURE, Explained, Input, Kind
+from commission.quantities import NOMENCLATURE, Display, Explained, Input, Kind
 
 PROPERTY = "property source"
 RATED_FIGURES = ("cooling_capacity", "net_cooling_capacity", "heating_capacity", "compressor_power", "power_input")
@@ -101,7 +101,7 @@ class SystemModel:
         Raises:
             InputError, NotCalculatedError: as `predict`.
         """
-        whole, _, _ = complete(self.condition_axes, conditions)
+        whole, _, _ = self._complete(conditions)
         _, start = self._values(self.fit.plan, whole, None)
         table: dict[str, dict[str, float]] = {}
         for key in whole:
@@ -118,7 +118,7 @@ class SystemModel:
         Raises:
             InputError, NotCalculatedError: as `predict`.
         """
-        whole, filled, _ = complete(self.condition_axes, conditions)
+        whole, filled, _ = self._complete(conditions)
         nominal, start = self._values(self.fit.plan, whole, None)
         effects: dict[str, dict[str, float]] = {}
         for cause, change, _ in self._changes(whole, filled, nominal, start, _Starts()):
@@ -140,7 +140,7 @@ class SystemModel:
         axis = self.condition_axes[condition]
 
         def gap(x: Sequence[float]) -> Sequence[float]:
-            whole, _, _ = complete(self.condition_axes, {**(conditions or {}), condition: x[0] * axis.rated})
+            whole, _, _ = self._complete({**(conditions or {}), condition: x[0] * axis.rated})
             found, _ = self._values(self.fit.plan, whole, None)
             if key not in found.values:
                 raise InputError(Problem("this quantity is not expected of this system", value=key))
@@ -154,6 +154,34 @@ class SystemModel:
         if not axis.low * (1 - 1e-6) <= x <= axis.high * (1 + 1e-6):
             raise NotCalculatedError(none)
         return x
+
+    def _complete(
+        self, conditions: Mapping[str, float] | None
+    ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
+        return complete(self.condition_axes, conditions, self.facts.pressure)
+
+    def _nearest(self, whole: Mapping[str, float], error: NotCalculatedError) -> NotCalculatedError:
+        """The reason why there is no balance, with the nearest condition on the way from the rated one that has one."""
+        rated = self.rated_condition
+        if set(rated) != set(whole):
+            return error
+        low, high = 0.0, 1.0
+        for _ in range(7):
+            middle = 0.5 * (low + high)
+            try:
+                self._values(self.fit.plan, {k: rated[k] + middle * (v - rated[k]) for k, v in whole.items()}, None)
+                low = middle
+            except NotCalculatedError:
+                high = middle
+        if low == 0.0:
+            return error
+        shown = Display("metric", self.facts.pressure)
+        near = ", ".join(
+            f"{NOMENCLATURE[k].label.lower()} {shown.of(k, rated[k] + low * (v - rated[k]))}"
+            for k, v in whole.items()
+            if abs(v - rated[k]) > 1e-9
+        )
+        return NotCalculatedError(f"{error}; towards this condition there still is one at {near}")
 
     def _values(
         self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
@@ -176,8 +204,11 @@ class SystemModel:
         return changes
 
     def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
-        whole, filled, outside = complete(self.condition_axes, conditions)
-        nominal, point = self._values(self.fit.plan, whole, starts.nominal)
+        whole, filled, outside = self._complete(conditions)
+        try:
+            nominal, point = self._values(self.fit.plan, whole, starts.nominal)
+        except NotCalculatedError as error:
+            raise self._nearest(whole, error) from error
         starts.nominal = point
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
         directions = 0

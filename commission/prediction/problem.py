@@ -16,7 +16,6 @@ from commission.prediction.building import (
     build,
     condenser_conductance,
     evaporator_conductance,
-    humidity,
     media,
     source_conductance,
     stream,
@@ -67,7 +66,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     if known is not None or case.unit is None:
         return known
     medium = stream(
-        rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
+        rated.source_temperature, rated.source_flow, facts.source_liquid, rated.source_humidity, facts.pressure
     )
     return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
 
@@ -206,7 +205,7 @@ def _conductances(
     evaporator = _evaporator(facts, a, rated, case)
     if evaporator is None:
         medium = stream(
-            rated.source_temperature, rated.source_flow, facts.source_liquid, humidity(facts, a), facts.pressure
+            rated.source_temperature, rated.source_flow, facts.source_liquid, rated.source_humidity, facts.pressure
         )
         difference = rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating)
         evaporator = source_conductance(rated.source_heat, difference, medium, air_share(facts, a))

@@ -277,7 +277,8 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
     if cooling <= 0:
         raise NotCalculatedError(f"at {case.origin} more power goes in than heat comes out: no heat is left to take up")
     source_temperature, sink_temperature = _temperatures(facts, a, case)
-    wet = case.conditions.get("heat_source_relative_humidity", humidity(facts, a))
+    stated = case.conditions.get("heat_source_relative_humidity")
+    wet = stated if stated is not None else humidity(facts, a)
     source_flow = case.conditions.get("heat_source_flow")
     if source_flow is None and facts.system.heat_source.flow is not None:
         source_flow = facts.system.heat_source.flow * (1 + a["source_flow_departure"])
@@ -300,7 +301,7 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
         unit = stream(sink_temperature, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
         sink_temperature -= heating / unit.capacity_rate
     speed = case.conditions.get("compressor_speed", facts.system.compressor.nominal_speed)
-    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow, speed)
+    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow, wet, speed)
 
 
 def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[float, float]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import random
 from collections.abc import Callable
+from dataclasses import replace
 from itertools import pairwise
 
 import pytest
@@ -146,3 +147,36 @@ def test_valve_limit_holds_the_evaporating_temperature_without_a_jump(real: Make
     assert warm.superheat < high + 8 + 273.15 - 270.15
     given = warm.balance.heat_from_source + warm.line_gain + warm.balance.compression.power
     assert warm.balance.heat_to_sink == pytest.approx(given - warm.balance.compression.shell_loss, rel=1e-6)
+
+
+@pytest.mark.parametrize(
+    ("fault", "signs"),
+    [
+        ("leak", {"evaporating": 1, "condensing": -1, "capacity": -1}),
+        ("gas", {"discharge": 1, "capacity": -1}),
+        ("condenser", {"condensing": 1, "discharge": 1, "capacity": -1}),
+        ("evaporator", {"evaporating": -1, "capacity": -1}),
+    ],
+)
+def test_faults_are_parameters_with_the_published_signs(
+    real: Make, cold_room_media: Conditions, fault: str, signs: dict[str, int]
+) -> None:
+    """Leaking valves, gas that does not condense, fouled condenser and evaporator move what Rossi & Braun 1997 (as
+    repeated by Li 2004) and Chen & Braun 2001 say they move, for a machine with held superheat."""
+    healthy = real()
+    changes: dict[str, dict[str, object]] = {
+        "leak": {"compressor": replace(healthy.compressor, leak=0.2)},  # type: ignore[call-arg]  # a displacement machine
+        "gas": {"gas_pressure": 1.5e5},
+        "condenser": {"condenser": replace(healthy.condenser, conductance=0.6 * healthy.condenser.conductance)},
+        "evaporator": {"evaporator": replace(healthy.evaporator, conductance=0.6 * healthy.evaporator.conductance)},
+    }
+    media = cold_room_media(2, 32)
+    plain, ill = healthy.operate(media), real(**changes[fault]).operate(media)
+    found = {
+        "evaporating": ill.balance.evaporating_temperature - plain.balance.evaporating_temperature,
+        "condensing": ill.balance.sink_drive - plain.balance.sink_drive,
+        "discharge": ill.discharge_pressure - plain.discharge_pressure,
+        "capacity": ill.balance.heat_from_source - plain.balance.heat_from_source,
+    }
+    for key, sign in signs.items():
+        assert found[key] * sign > 0

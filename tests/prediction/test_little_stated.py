@@ -31,6 +31,15 @@ rated_points:
   - {heat_source_inlet_temperature: 12 °C, heat_sink_inlet_temperature: 35 °C, cooling_capacity: 50 kW,
      power_input: 17 kW}
 """
+WET_AIR_CONDITIONER = """
+duty: comfort_cooling
+refrigerant: R-32
+heat_source: {medium: air}
+heat_sink: {medium: air}
+rated_points:
+  - {heat_source_inlet_temperature: 27 °C, heat_source_wet_bulb: 19 °C, heat_sink_inlet_temperature: 35 °C,
+     cooling_capacity: 5 kW, power_input: 1.55 kW}
+"""
 AIR_CONDITIONER = """
 duty: comfort_cooling
 refrigerant: R-32
@@ -54,6 +63,7 @@ def test_outdoor_coil_runs_five_to_ten_kelvin_colder(written: Written) -> None:
     ("text", "key", "value", "power"),
     [
         (AIR_HEAT_PUMP, "heating_capacity", 8000, 1800),
+        (WET_AIR_CONDITIONER, "cooling_capacity", 5000, 1550),
         (CHILLER, "cooling_capacity", 50_000, 17_000),
         (AIR_CONDITIONER, "cooling_capacity", 3500, 1050),
     ],
@@ -65,6 +75,7 @@ def test_one_point_is_enough(written: Written, text: str, key: str, value: float
     assert expected[key].value == pytest.approx(value, rel=1e-4)
     assert expected["power_input"].value == pytest.approx(power, rel=1e-4)
     assert expected[key].value / expected["compressor_power"].value < expected["carnot_cop"].value
+    assert expected[key].uncertainty == pytest.approx(0, abs=2e-3 * value)
     assert 0.4 < model.fitted["isentropic efficiency at the rated point"].value < 0.8
 
 
@@ -104,3 +115,14 @@ def test_unstated_current_gives_its_reason(written: Written) -> None:
     found = fit(written(AIR_CONDITIONER), "it").predict()
     assert "current" not in found.expected
     assert "voltage" in found.not_calculated["current"]
+
+
+def test_a_wetter_room_gives_more_capacity_and_less_sensible_heat(written: Written) -> None:
+    """Wet bulb is a condition of an air conditioner: 22 °C for 19 °C gives more total and less sensible heat."""
+    model = fit(written(WET_AIR_CONDITIONER), "it")
+    room = {"heat_source_inlet_temperature": 300.15}
+    dry = model.predict({**room, "heat_source_wet_bulb": 292.15}).expected
+    wet = model.predict({**room, "heat_source_wet_bulb": 295.15}).expected
+    assert dry["cooling_capacity"].value == pytest.approx(5000, rel=1e-3)
+    assert 1.04 < wet["cooling_capacity"].value / dry["cooling_capacity"].value < 1.15
+    assert wet["sensible_heat_ratio"].value < dry["sensible_heat_ratio"].value - 0.1
