@@ -54,7 +54,11 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     pages, left_pages = owner_pages(plant.loaded.folder)
     texts: dict[str, bytes] = {"style/paper.css": paper_style(plant.name, plant.loaded.digest)}
     archive = read_archive(plant)
-    for path in ("search-index.js", "scripts/search.js", *(f.site_path for f in (*documents, *archive.files) if f.sheet is None)):
+    for path in (
+        "search-index.js",
+        "scripts/search.js",
+        *(f.site_path for f in (*documents, *archive.files) if f.sheet is None),
+    ):
         book.add_file(path)
 
     progress("reviewing")

@@ -56,7 +56,9 @@ class SheetTable:
     worked_out: tuple[SheetRow, ...]
 
 
-def _rows(data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...], display: Display) -> tuple[SheetRow, ...]:
+def _rows(
+    data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...], display: Display
+) -> tuple[SheetRow, ...]:
     rows = []
     for key in keys:
         if not any(p.prediction and key in p.prediction.expected for p in points):
@@ -82,22 +84,30 @@ def sheet_tables(data: SystemData, grid: Grid, display: Display) -> tuple[SheetT
     for start in range(0, n, size or 1):
         points = grid.points[start : start + size]
         heads = tuple(display.number(p.temperature, Kind.TEMPERATURE, 0) for p in points)
-        tables.append(
-            SheetTable(heads, _rows(data, READ, points, display), _rows(data, WORKED_OUT, points, display))
-        )
+        tables.append(SheetTable(heads, _rows(data, READ, points, display), _rows(data, WORKED_OUT, points, display)))
     return tuple(tables)
 
 
 def _plain_rows(data: SystemData, keys: tuple[str, ...], display: Display) -> tuple[SheetRow, ...]:
     """Rows without expectations, for a system that cannot be calculated."""
     return tuple(
-        SheetRow(label_of(k), unit_of(display, NOMENCLATURE[k].kind), _HOW.get(k, ""), data.system.measured_with.get(k, ""), ())
+        SheetRow(
+            label_of(k),
+            unit_of(display, NOMENCLATURE[k].kind),
+            _HOW.get(k, ""),
+            data.system.measured_with.get(k, ""),
+            (),
+        )
         for k in keys
     )
 
 
 def _condition_rows(data: SystemData, display: Display) -> list[dict[str, str]]:
-    keys = list(data.model.condition_axes) if data.model else ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
+    keys = (
+        list(data.model.condition_axes)
+        if data.model
+        else ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
+    )
     rated = data.rated.conditions if data.rated else {}
     return [
         {

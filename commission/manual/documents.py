@@ -1,4 +1,4 @@
-"""Files of the plant folder that travel with the manual: documents are linked and copied, the owner's pages rendered."""
+"""Files of the plant folder that travel with the manual: documents are copied, the owner's pages rendered."""
 
 from __future__ import annotations
 
@@ -9,8 +9,10 @@ from pathlib import Path
 from commission.description import LoadedPlant
 from commission.manual.book import OwnerFile, Sheet
 
-_ACTIVE = {".html", ".htm", ".xhtml", ".shtml", ".mhtml", ".svg", ".svgz", ".xml", ".xsl", ".js", ".mjs", ".hta", ".exe",
-           ".bat", ".cmd", ".ps1", ".sh", ".jar", ".lnk", ".url"}  # fmt: skip
+_ACTIVE = {
+    ".html", ".htm", ".xhtml", ".shtml", ".mhtml", ".svg", ".svgz", ".xml", ".xsl", ".js", ".mjs", ".hta", ".exe",
+    ".bat", ".cmd", ".ps1", ".sh", ".jar", ".lnk", ".url",
+}  # fmt: skip
 """Types of file that can run a program when they are opened: they are not copied into the manual."""
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Any
 
 from commission.manual.book import Book, Sheet
@@ -87,7 +88,7 @@ class Frames:
         if not sheet.group.startswith("system:"):
             return None
         pages = self.book.group(sheet.group)
-        for here, after in zip(pages, pages[1:], strict=False):
+        for here, after in pairwise(pages):
             if here.id == sheet.id:
                 return NavItem(after.label, self.book.link(sheet.id, after.id), False)
         return None

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant, System
@@ -85,7 +86,7 @@ def make_grid(loaded: LoadedPlant, system: System, model: SystemModel) -> Grid |
     if key not in model.condition_axes:
         return None
     coarse = temperatures(loaded, key, model)
-    middles = [0.5 * (a + b) for a, b in zip(coarse, coarse[1:], strict=False)]
+    middles = [0.5 * (a + b) for a, b in pairwise(coarse)]
     line = _walk(model, key, tuple(sorted({*coarse, *middles})))
     fixed = {k: v for k, v in model.rated_condition.items() if k != key}
     return Grid(key, title, fixed, tuple(p for p in line if p.temperature in coarse), line)

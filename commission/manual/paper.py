@@ -1,4 +1,4 @@
-"""What each printed page carries at its foot: plant, digest of the description, page number. As a generated style sheet."""
+"""What each printed page carries at its foot, as a generated style sheet: plant, digest, page number."""
 
 from __future__ import annotations
 

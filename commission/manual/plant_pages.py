@@ -48,7 +48,9 @@ def at_a_glance(plant: PlantData, standings: dict[str, Standing], open_items: in
                 ("records", "Records"),
             )
         )
-        shown.append(GlanceSystem(data.name, _system_line(data, plant.display), steps(standing), step, doors, data.because))
+        shown.append(
+            GlanceSystem(data.name, _system_line(data, plant.display), steps(standing), step, doors, data.because)
+        )
     site = plant.loaded.plant.plant
     context = {
         "systems": shown,
@@ -175,7 +177,12 @@ def reference_page() -> Sheet:
     for row in key_reference():
         groups.setdefault(row.path.split(".")[0].split("[")[0], []).append(row)
     return Sheet(
-        "description-keys", "Keys of the description", "reference", "reference.html", {"groups": groups}, short="Keys of the description"
+        "description-keys",
+        "Keys of the description",
+        "reference",
+        "reference.html",
+        {"groups": groups},
+        short="Keys of the description",
     )
 
 

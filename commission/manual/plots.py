@@ -39,6 +39,11 @@ class Figure:
     caption: str
     content: Chart | PhDiagram | HistoryChart
 
+    @property
+    def size(self) -> tuple[int, int]:
+        """Width and height in hundredths of an inch, so that a page keeps the room while the picture loads."""
+        return round(100 * self.content.inches[0]), round(100 * self.content.inches[1])
+
 
 _CHARTS: tuple[tuple[str, str, Kind, tuple[tuple[str, str], ...]], ...] = (
     ("pressures", "Pressures", Kind.PRESSURE, (("discharge_pressure", "discharge"), ("suction_pressure", "suction"))),
@@ -54,9 +59,7 @@ def charts(data: SystemData, grid: Grid, display: Display) -> tuple[Figure, ...]
     """The charts of expected readings over outdoor temperature."""
     found = []
     for name, title, kind, members in _CHARTS:
-        lines = tuple(
-            line for key, words in members if (line := _line(grid, key, words, kind, display)) is not None
-        )
+        lines = tuple(line for key, words in members if (line := _line(grid, key, words, kind, display)) is not None)
         if not lines:
             continue
         unit = unit_of(display, kind)
@@ -175,7 +178,9 @@ def history_figures(data: SystemData, found: Sequence[Series], display: Display)
             half=tuple(_spread(display, p.expanded, kind) for p in one.points),
             significant=tuple(p.significant for p in one.points),
         )
-        alt = f"Chart: {label.lower()}, reading minus expected at {len(one.points)} visits. The table holds the numbers."
+        alt = (
+            f"Chart: {label.lower()}, reading minus expected at {len(one.points)} visits. The table holds the numbers."
+        )
         figures.append(Figure(f"figures/{data.slug}-history-{one.quantity.replace('_', '-')}", alt, "", chart))
     return tuple(figures)
 

@@ -154,7 +154,7 @@ def _plus_minus(display: Display, key: str, deviation: float, expanded: float) -
     return f"{_signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
 
 
-def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
+def _reading(key: str, r: FrozenReading) -> dict[str, str]:
     return {
         "label": label_of(key),
         "written": r.written,
@@ -187,7 +187,9 @@ def _limits(display: Display, kind: Kind, low: float | None, high: float | None)
 def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
     kind = NOMENCLATURE[g.quantity].kind
     shares = [
-        f"{display.text(v, Kind.RATIO, 1)} {word}" for v, word in ((g.below, "below"), (g.above, "above")) if v is not None
+        f"{display.text(v, Kind.RATIO, 1)} {word}"
+        for v, word in ((g.below, "below"), (g.above, "above"))
+        if v is not None
     ]
     at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in g.at.items())
     pairs = [
@@ -226,12 +228,17 @@ def _shared(plant: PlantData, record: FiledRecord, archive: Archive) -> dict[str
         "name": title_of(record),
         "look": VERDICT_CLASS[record.verdict],
         "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [_reading(display, k, r) for k, r in filed.conditions.items()],
-        "air": f"{filed.barometric_pressure / 100:.0f} hPa" + ("" if filed.barometer_measured else ", not measured: from the altitude"),
+        "conditions": [_reading(k, r) for k, r in filed.conditions.items()],
+        "air": f"{filed.barometric_pressure / 100:.0f} hPa"
+        + ("" if filed.barometer_measured else ", not measured: from the altitude"),
         "guarantees": [_guarantee(display, g) for g in filed.guarantees],
         "instruments": [(name, list(words.items())) for name, words in filed.instruments.items()],
         "attachments": [
-            (a.file, f"records/{a.path}" if any(f.site_path == f"records/{a.path}" for f in archive.files) else None, a.sha256)
+            (
+                a.file,
+                f"records/{a.path}" if any(f.site_path == f"records/{a.path}" for f in archive.files) else None,
+                a.sha256,
+            )
             for a in filed.attachments
         ],
         "items": [i for i in archive.items if i.found_in == record.id],
@@ -244,7 +251,7 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
     filed = record.filed
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
-    alone = [_reading(display, k, r) for k, r in filed.readings.items() if k not in filed.deviations]
+    alone = [_reading(k, r) for k, r in filed.readings.items() if k not in filed.deviations]
     corrected = archive.corrected.get(record.id)
     context = {
         **_shared(plant, record, archive),
@@ -257,7 +264,7 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
         ],
         "corrected_page": archive.pages.get(corrected) if corrected else None,
         "corrects_page": archive.pages.get(record.file.corrects) if record.file.corrects else None,
-        "certificate": certificate_id(data, record, archive) if _accepted(record, archive) else None,
+        "certificate": certificate_id(record, archive) if _accepted(record, archive) else None,
         "records_page": data.page("records"),
     }
     title = f"{title_of(record)}, {record.started.date().isoformat()}"
@@ -268,7 +275,7 @@ def _accepted(record: FiledRecord, archive: Archive) -> bool:
     return record.file.mode == "test" and record.verdict == "conforming" and record.id not in archive.corrected
 
 
-def certificate_id(data: SystemData, record: FiledRecord, archive: Archive) -> str:
+def certificate_id(record: FiledRecord, archive: Archive) -> str:
     """The page of the certificate."""
     return f"{archive.pages[record.id]}-certificate"
 
@@ -277,7 +284,7 @@ def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[
     """A certificate for each accepted test, printed from what was frozen when it was filed."""
     return tuple(
         Sheet(
-            certificate_id(data, r, archive),
+            certificate_id(r, archive),
             "Certificate of acceptance",
             data.group,
             "certificate.html",

@@ -138,7 +138,9 @@ def show_how(
         source=method.source,
         mark=method.mark,
         inputs=tuple(show_input(i, display) for i in explained.inputs),
-        assumptions=tuple((key, assumptions[key].title if key in assumptions else key) for key in explained.assumptions),
+        assumptions=tuple(
+            (key, assumptions[key].title if key in assumptions else key) for key in explained.assumptions
+        ),
         parts=tuple(
             (assumptions[cause].title if cause in assumptions else cause, spread_text(display, kind, size))
             for cause, size in ordered

@@ -34,11 +34,11 @@ class GeneratedPage(Page):
         super().__init__(sheet.title, file, config)
         self.body = body
 
-    def read_source(self, config: MkDocsConfig) -> None:  # noqa: ARG002 - the signature is MkDocs'
+    def read_source(self, config: MkDocsConfig) -> None:
         """There is no source."""
         self.markdown, self.meta = "", {}
 
-    def render(self, config: MkDocsConfig, files: Files) -> None:  # noqa: ARG002 - the signature is MkDocs'
+    def render(self, config: MkDocsConfig, files: Files) -> None:
         """The body is there already."""
         self.content = self.body
         self.toc = TableOfContents([])
@@ -82,7 +82,7 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
             files.append(file)
         return files
 
-    def on_page_content(self, html: str, *, page: Page, config: MkDocsConfig, files: Files) -> str:  # noqa: ARG002
+    def on_page_content(self, html: str, *, page: Page, config: MkDocsConfig, files: Files) -> str:
         """Cleans what came from Markdown and notes the page for the search."""
         sheet = self.sheets[page.file.src_uri]
         body = html if isinstance(page, GeneratedPage) else clean(html)
@@ -90,7 +90,7 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
         self.entries.append(search.entry(page.file.url, title, sheet.kicker, body))
         return body
 
-    def on_env(self, env: jinja2.Environment, *, config: MkDocsConfig, files: Files) -> jinja2.Environment:  # noqa: ARG002
+    def on_env(self, env: jinja2.Environment, *, config: MkDocsConfig, files: Files) -> jinja2.Environment:
         """MkDocs' environment has autoescape off."""
         harden(env)
         return env
@@ -100,8 +100,8 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
         context: Any,
         *,
         page: Page,
-        config: MkDocsConfig,  # noqa: ARG002
-        nav: Navigation,  # noqa: ARG002
+        config: MkDocsConfig,
+        nav: Navigation,
     ) -> Any:
         """What the outer template needs."""
         sheet = self.sheets[page.file.src_uri]

@@ -94,7 +94,7 @@ def steps(s: Standing) -> tuple[Step, ...]:
 
 
 def next_step(s: Standing, pages: dict[str, str]) -> Next:
-    """What to do next with this system. `pages` gives the page ids: what, findings, checklist, day_sheet, test, open."""
+    """What to do next with this system; `pages` gives page ids: what, findings, checklist, day_sheet, test, open."""
     if s.because is not None:
         return Next(f"Complete the description: {s.because}.", "Until then nothing can be compared.", pages["what"],
                     "What it is")  # fmt: skip

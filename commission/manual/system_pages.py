@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Any
 
 from commission.manual.assumed import ShownAssumption, shown_assumptions
@@ -60,7 +61,9 @@ def side_name(plant: PlantData, data: SystemData, side: str) -> str:
     return f"air of {(space.name if space else None) or medium.space}"
 
 
-def conditions_words(plant: PlantData, data: SystemData, conditions: Mapping[str, float]) -> tuple[tuple[str, str], ...]:
+def conditions_words(
+    plant: PlantData, data: SystemData, conditions: Mapping[str, float]
+) -> tuple[tuple[str, str], ...]:
     """Conditions by side: what, and its values in one line."""
     display = plant.display
     lines = []
@@ -84,7 +87,7 @@ def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str,
 
 
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
-    """All expected values at the rated condition, grouped; what is not calculated stands where it would be looked for."""
+    """All expected values at the rated condition, grouped; what is not calculated stands in its place too."""
     assert data.rated is not None
     p = data.rated
     keys = tuple(p.expected) + tuple(k for k in p.not_calculated if k not in p.expected)
@@ -120,42 +123,35 @@ class Cell:
 
 
 @dataclass(frozen=True, slots=True)
-class GridRow:
-    """One temperature of the grid."""
-
-    head: str
-    cells: tuple[Cell, ...]
-    because: str | None
-
-
-@dataclass(frozen=True, slots=True)
-class ColumnInputs:
-    """The inputs of one column at each temperature."""
+class RowInputs:
+    """The inputs of one quantity at each temperature."""
 
     names: tuple[str, ...]
     rows: tuple[tuple[str, tuple[str, ...]], ...]
 
 
 @dataclass(frozen=True, slots=True)
-class Column:
-    """One quantity of the grid: heading with unit, and its workings."""
+class GridRow:
+    """One quantity of the grid: its name and unit, a cell for each temperature, and its workings."""
 
     key: str
     label: str
-    head: str
+    unit: str
+    cells: tuple[Cell, ...]
     definition: str
     how: How
-    inputs: ColumnInputs | None
+    inputs: RowInputs | None
 
 
 @dataclass(frozen=True, slots=True)
 class GridTable:
-    """The grid as a table of text."""
+    """The grid as a table of text: temperatures across, quantities down; `notes` say why a column is empty."""
 
     title: str
     unit: str
-    columns: tuple[Column, ...]
+    heads: tuple[str, ...]
     rows: tuple[GridRow, ...]
+    notes: tuple[tuple[str, str], ...]
 
 
 def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | None:
@@ -167,19 +163,14 @@ def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | No
     return GridTable(
         grid.title,
         unit_of(display, Kind.TEMPERATURE),
-        tuple(_column(data, k, good, display) for k in keys),
-        tuple(_grid_row(p, keys, display) for p in grid.points),
+        tuple(_head(p, display) for p in grid.points),
+        tuple(_grid_row(data, k, grid.points, good, display) for k in keys),
+        tuple((_head(p, display), p.because) for p in grid.points if p.because is not None),
     )
 
 
 def _head(point: GridPoint, display: Display) -> str:
     return display.number(point.temperature, Kind.TEMPERATURE, 0)
-
-
-def _grid_row(point: GridPoint, keys: list[str], display: Display) -> GridRow:
-    if point.prediction is None:
-        return GridRow(_head(point, display), tuple(Cell("", "") for _ in keys), point.because)
-    return GridRow(_head(point, display), tuple(grid_cell(point, k, display) for k in keys), None)
 
 
 def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
@@ -191,17 +182,24 @@ def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
     return Cell(display.number(explained.value, kind), band_text(display, kind, explained.value, explained.uncertainty))
 
 
-def _column(data: SystemData, key: str, good: list[GridPoint], display: Display) -> Column:
-    firsts = [p.prediction.expected[key] for p in good if p.prediction and key in p.prediction.expected]
-    how = show_how(firsts[0], display, data.assumptions)
+def _grid_row(
+    data: SystemData, key: str, points: tuple[GridPoint, ...], good: list[GridPoint], display: Display
+) -> GridRow:
+    first = next(p.prediction.expected[key] for p in good if p.prediction and key in p.prediction.expected)
+    how = show_how(first, display, data.assumptions)
     quantity = NOMENCLATURE[key]
-    unit = unit_of(display, quantity.kind)
-    head = f"{quantity.label}, {unit}" if unit else quantity.label
-    bare = How(how.method, how.name, how.formula, how.source, how.mark, (), how.assumptions, (), None)
-    return Column(key, quantity.label, head, quantity.definition, bare, _column_inputs(data, key, good, display))
+    return GridRow(
+        key,
+        quantity.label,
+        unit_of(display, quantity.kind),
+        tuple(grid_cell(p, key, display) for p in points),
+        quantity.definition,
+        How(how.method, how.name, how.formula, how.source, how.mark, (), how.assumptions, (), None),
+        _row_inputs(data, key, good, display),
+    )
 
 
-def _column_inputs(data: SystemData, key: str, good: list[GridPoint], display: Display) -> ColumnInputs | None:
+def _row_inputs(data: SystemData, key: str, good: list[GridPoint], display: Display) -> RowInputs | None:
     shown = [
         (_head(p, display), show_how(p.prediction.expected[key], display, data.assumptions).inputs)
         for p in good
@@ -211,7 +209,7 @@ def _column_inputs(data: SystemData, key: str, good: list[GridPoint], display: D
     if not names:
         return None
     rows = tuple((head, tuple({i.name: i.value for i in inputs}.get(n, "–") for n in names)) for head, inputs in shown)
-    return ColumnInputs(names, rows)
+    return RowInputs(names, rows)
 
 
 def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure, ...], ph: Figure | None) -> Sheet:
@@ -239,7 +237,7 @@ def _grid_note(plant: PlantData, data: SystemData, grid: Grid) -> str:
     fixed = conditions_line(plant, data, grid.fixed)
     text = f"Everything else is as rated: {fixed}. " if fixed else ""
     regimes = [(p.temperature, p.prediction.regime) for p in grid.points if p.prediction]
-    changes = [(t, r) for (_, before), (t, r) in zip(regimes, regimes[1:], strict=False) if r != before]
+    changes = [(t, r) for (_, before), (t, r) in pairwise(regimes) if r != before]
     if changes:
         text += f"When it is cold: {regimes[0][1]}"
         text += "".join(f"; from about {display.text(t, Kind.TEMPERATURE, 0)}: {r}" for t, r in changes) + ". "
@@ -263,8 +261,7 @@ def _ph_context(data: SystemData, ph: Figure, display: Display) -> dict[str, Any
         for s in data.rated.states
     ]
     return {
-        "stem": ph.stem,
-        "alt": ph.alt,
+        "figure": ph,
         "states": states,
         "pressure_unit": p_unit,
         "temperature_unit": unit_of(display, Kind.TEMPERATURE),

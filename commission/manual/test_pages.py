@@ -56,7 +56,9 @@ def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
         "decided": g.decided,
         "expected": display.text(measured.value, kind) if measured else None,
         "limit": _limit(g, display, kind),
-        "expanded": f"{display.spread(spread, kind)} {display.spread_unit(kind)}".strip() if spread is not None else None,
+        "expanded": f"{display.spread(spread, kind)} {display.spread_unit(kind)}".strip()
+        if spread is not None
+        else None,
         "route": g.verdict.route,
         "withheld": g.verdict.withheld,
         "what": g.verdict.what_would_decide,
@@ -147,7 +149,9 @@ def sheet_grids(sheet: TestSheet, display: Display) -> tuple[SheetGrid, ...]:
     heads = tuple(display.text(v, kind, 0) for v in last.values)
     grids = []
     for n, values in enumerate(product(*(a.values for a in outer))):
-        fixed = ", ".join(f"{label_of(a.key).lower()} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True))
+        fixed = ", ".join(
+            f"{label_of(a.key).lower()} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True)
+        )
         place = slice(n * len(last.values), (n + 1) * len(last.values))
         expected = [t for t in sheet.targets_for("expectation") if t.key in _SHEET_KEYS]
         expected.sort(key=lambda t: _SHEET_KEYS.index(t.key))
@@ -196,7 +200,11 @@ def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
             continue
         kind = NOMENCLATURE[t.key].kind
         at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in t.terms.at.items())
-        shares = [f"{display.text(v, Kind.RATIO, 1)} {w}" for v, w in ((t.terms.below, "below"), (t.terms.above, "above")) if v]
+        shares = [
+            f"{display.text(v, Kind.RATIO, 1)} {w}"
+            for v, w in ((t.terms.below, "below"), (t.terms.above, "above"))
+            if v
+        ]
         facts = [
             ("Promised", f"{display.text(t.terms.value, kind)} at {at}"),
             ("Tolerance", ", ".join(shares) or "none stated"),
@@ -243,13 +251,19 @@ def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
         context = _sheet_context(plant, data, found, name) | {"sheets": []}
         title = found.title or f"Test sheet {name}"
         pages.append(Sheet(page, title, data.group, "test_sheet.html", context, data.kicker, listed=False, paper=True))
-    context = {"because": data.because or "the weather range of this system is not known", "sheets": links, "frozen": None}
+    context = {
+        "because": data.because or "the weather range of this system is not known",
+        "sheets": links,
+        "frozen": None,
+    }
     if data.model is not None and data.grid is not None:
         try:
             context |= _sheet_context(plant, data, _draft(plant, data), None)
         except CommissionError as error:
             context["because"] = error.problems[0].message
-    first = Sheet(data.page("test-sheet"), "Test sheet", data.group, "test_sheet.html", context, data.kicker, paper=True)
+    first = Sheet(
+        data.page("test-sheet"), "Test sheet", data.group, "test_sheet.html", context, data.kicker, paper=True
+    )
     return first, *pages
 
 

@@ -46,7 +46,9 @@ def _visit(
     expected = model.predict(
         {"heat_source_inlet_temperature": source + 273.15, "heat_sink_inlet_temperature": sink + 273.15}
     ).expected
-    gauge = {k: (expected[k].value - loaded.barometric_pressure) / 1e5 for k in ("suction_pressure", "discharge_pressure")}
+    gauge = {
+        k: (expected[k].value - loaded.barometric_pressure) / 1e5 for k in ("suction_pressure", "discharge_pressure")
+    }
     return VISIT.format(
         source=source,
         sink=sink,
@@ -120,12 +122,13 @@ systems:
     refrigerant: R-290
     charge: 0.45 kg
     spaces: {{evaporator: room, condensing_unit: yard}}
-    nameplate: {{maker_type: {_quoted(f"type {IMAGE} {BOLD}")}, allowable_pressure_low: 17 bar g, allowable_pressure_high: 28 bar g}}
+    nameplate: {{maker_type: {_quoted(f"type {IMAGE} {BOLD}")}, allowable_pressure_low: 17 bar g,
+      allowable_pressure_high: 28 bar g}}
     heat_source: {{medium: air, space: room, flow: 2100 m3/h, relative_humidity: 85 %}}
     heat_sink: {{medium: air, space: yard, flow: 2600 m3/h}}
     rated_points:
-      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 3.4 kW, power_input: 1.6 kW,
-         source: {_quoted(SCRIPT)}}}
+      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 3.4 kW,
+         power_input: 1.6 kW, source: {_quoted(SCRIPT)}}}
     documents:
       - {{title: {_quoted(f"Drawing {SCRIPT}")}, file: drawing.txt}}
       - {{title: Missing, file: nowhere.pdf}}
@@ -136,10 +139,25 @@ systems:
     heat_source: {{medium: air, space: room}}
     heat_sink: {{medium: air, space: yard}}
     rated_points:
-      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 30 kW, power_input: 0.5 kW}}
+      - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 30 kW,
+         power_input: 0.5 kW}}
 documents:
   - {{title: {_quoted(LINK)}, file: drawing.txt}}
 """
+
+TINY = """\
+plant: {name: Tiny}
+systems:
+  impossible:
+    duty: cold_storage
+    refrigerant: R-290
+    heat_source: {medium: air}
+    heat_sink: {medium: air}
+    rated_points:
+      - {heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 30 kW,
+         power_input: 0.5 kW}
+"""
+"""A plant that is built quickly, since nothing of it can be calculated."""
 
 OWNER_PAGE = f"""\
 # Who {SCRIPT} to call
@@ -171,6 +189,13 @@ def write_hostile_plant(folder: Path, example_folder: Path) -> None:
     (folder / "documents" / "drawing.txt").write_text("a drawing", encoding="utf-8")
     (folder / "documents" / "trap.html").write_text(SCRIPT, encoding="utf-8")
     (folder / "documents" / "outside.txt").symlink_to(example_folder / "plant.yaml")
+
+
+def write_tiny_plant(folder: Path) -> Path:
+    """A plant for tests of building itself."""
+    folder.mkdir(parents=True)
+    (folder / "plant.yaml").write_text(TINY, encoding="utf-8")
+    return folder
 
 
 def copy_plant(source: Path, target: Path) -> Path:

@@ -11,12 +11,19 @@ import pytest
 from commission.description import DescriptionError
 from commission.errors import InputError
 from commission.manual import BuildResult, FolderStore, build, templates_folder
-from tests.manual.plants import copy_plant
+from commission.manual.store import kept
+from tests.manual.plants import copy_plant, write_tiny_plant
 
 
 def _digests(folder: Path) -> dict[str, str]:
     files = (p for p in sorted(folder.rglob("*")) if p.is_file())
     return {p.relative_to(folder).as_posix(): hashlib.sha256(p.read_bytes()).hexdigest() for p in files}
+
+
+@pytest.fixture
+def tiny(tmp_path: Path) -> Path:
+    """A plant that is built quickly."""
+    return write_tiny_plant(tmp_path / "tiny" / "plant")
 
 
 @pytest.fixture(scope="module")
@@ -46,9 +53,7 @@ def test_nothing_that_changes_by_date_is_written(site: Path) -> None:
         assert str(site.parent) not in page.read_text(encoding="utf-8")
 
 
-def test_two_builds_are_the_same_to_the_byte(
-    plant: Path, digests: dict[str, str], tmp_path: Path
-) -> None:
+def test_two_builds_are_the_same_to_the_byte(plant: Path, digests: dict[str, str], tmp_path: Path) -> None:
     """Another folder, another run, figures out of a cold store and then out of a warm one: the same bytes."""
     store = FolderStore(tmp_path / "store")
     for name in ("cold", "warm"):
@@ -57,20 +62,35 @@ def test_two_builds_are_the_same_to_the_byte(
     assert list((tmp_path / "store").iterdir())
 
 
-def test_a_store_that_cannot_be_written_means_compute(plant: Path, digests: dict[str, str], tmp_path: Path) -> None:
-    """The cache is a file where a folder is wanted: the manual is built all the same."""
+def test_a_store_that_cannot_be_written_means_compute(tmp_path: Path) -> None:
+    """The store is a file where a folder is wanted: nothing is kept, nothing is raised, and the value is made."""
     blocked = tmp_path / "file"
     blocked.write_text("no folder")
-    build(plant, tmp_path / "manual", cache=blocked)
-    assert _digests(tmp_path / "manual") == digests
+    store = FolderStore(blocked)
+    assert [kept(store, ("a", 1), lambda: b"made") for _ in range(2)] == [b"made", b"made"]
+    assert store.get("anything") is None
 
 
-def test_progress_is_told(plant: Path, tmp_path: Path) -> None:
+def test_progress_is_told(tiny: Path, tmp_path: Path) -> None:
     """Each stage of the build says what it is doing."""
     heard: list[str] = []
-    build(plant, tmp_path / "manual", progress=heard.append)
-    assert "calculating cold-room" in heard
+    build(tiny, tmp_path / "manual", progress=heard.append)
+    assert "calculating impossible" in heard
     assert any(text.startswith("page 1 of ") for text in heard)
+
+
+def test_a_manual_for_the_local_preview_says_so_in_its_policy(tiny: Path, tmp_path: Path) -> None:
+    """Only a served manual lets the reload script run; still nothing may be fetched from elsewhere."""
+    build(tiny, tmp_path / "served", serving=True)
+    text = (tmp_path / "served" / "index.html").read_text(encoding="utf-8")
+    assert "&#39;unsafe-inline&#39;" in text
+    assert "default-src &#39;none&#39;" in text
+
+
+def test_the_manual_lies_in_the_plant_folder_unless_said(tiny: Path) -> None:
+    """Without a folder the manual is written to PLANT/manual, and building again replaces it."""
+    for _ in range(2):
+        assert build(tiny).first_page == tiny.resolve() / "manual" / "index.html"
 
 
 class TestAFailingBuild:
@@ -89,16 +109,16 @@ class TestAFailingBuild:
         assert (old / "index.html").read_text() == "the last good manual"
         assert [p.name for p in old.parent.iterdir() if p.name.startswith(".")] == []
 
-    def test_description_that_cannot_be_read(self, old: Path, plant: Path) -> None:
+    def test_description_that_cannot_be_read(self, old: Path, tiny: Path) -> None:
         """A broken description is an error with its place."""
-        copy = copy_plant(plant, old.parent / "plant")
+        copy = copy_plant(tiny, old.parent / "plant")
         (copy / "plant.yaml").write_text("plant: {name: x, altitude: 3}\nsystems: {}\n")
         with pytest.raises(DescriptionError) as caught:
             build(copy, old)
         assert caught.value.problems[0].line == 1
         self._assert_untouched(old)
 
-    def test_a_fault_while_pages_are_written(self, old: Path, plant: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def test_a_fault_while_pages_are_written(self, old: Path, tiny: Path, monkeypatch: pytest.MonkeyPatch) -> None:
         """A fault in the middle of the site: what was written so far goes away."""
         from commission.manual import site as driver
 
@@ -107,12 +127,12 @@ class TestAFailingBuild:
 
         monkeypatch.setattr(driver.search, "index_script", fail)
         with pytest.raises(RuntimeError, match="in the middle"):
-            build(plant, old)
+            build(tiny, old)
         self._assert_untouched(old)
 
-    def test_strict_and_a_link_that_leads_nowhere(self, old: Path, plant: Path) -> None:
+    def test_strict_and_a_link_that_leads_nowhere(self, old: Path, tiny: Path) -> None:
         """With strict, a broken link of an owner's page stops the build and is named."""
-        copy = copy_plant(plant, old.parent / "plant")
+        copy = copy_plant(tiny, old.parent / "plant")
         (copy / "pages").mkdir(exist_ok=True)
         (copy / "pages" / "broken.md").write_text("# Broken\n\n[nowhere](missing.md)\n")
         with pytest.raises(InputError) as caught:
@@ -120,9 +140,9 @@ class TestAFailingBuild:
         assert "missing.md" in str(caught.value)
         self._assert_untouched(old)
 
-    def test_without_strict_it_is_a_warning(self, old: Path, plant: Path) -> None:
+    def test_without_strict_it_is_a_warning(self, old: Path, tiny: Path) -> None:
         """Without strict the same link is reported, and the new manual takes the place of the old one."""
-        copy = copy_plant(plant, old.parent / "plant")
+        copy = copy_plant(tiny, old.parent / "plant")
         (copy / "pages").mkdir(exist_ok=True)
         (copy / "pages" / "broken.md").write_text("# Broken\n\n[nowhere](missing.md)\n")
         result = build(copy, old)
@@ -134,27 +154,27 @@ class TestAFailingBuild:
 class TestWhereAManualMayBeWritten:
     """A build replaces nothing but a manual."""
 
-    def test_a_folder_with_other_files_is_left_alone(self, plant: Path, tmp_path: Path) -> None:
+    def test_a_folder_with_other_files_is_left_alone(self, tiny: Path, tmp_path: Path) -> None:
         """Somebody's folder is refused and keeps its file."""
         (tmp_path / "photos").mkdir()
         (tmp_path / "photos" / "cat.jpg").write_text("a cat")
         with pytest.raises(InputError) as caught:
-            build(plant, tmp_path / "photos")
+            build(tiny, tmp_path / "photos")
         assert caught.value.problems[0].file == str(tmp_path / "photos")
         assert (tmp_path / "photos" / "cat.jpg").read_text() == "a cat"
 
-    def test_the_plant_folder_and_what_holds_it_are_refused(self, plant: Path) -> None:
+    def test_the_plant_folder_and_what_holds_it_are_refused(self, tiny: Path) -> None:
         """The description would be lost."""
-        for out in (plant, plant.parent):
+        for out in (tiny, tiny.parent):
             with pytest.raises(InputError) as caught:
-                build(plant, out)
+                build(tiny, out)
             assert "plant folder" in caught.value.problems[0].message
 
-    def test_a_file_in_the_way_is_refused(self, plant: Path, tmp_path: Path) -> None:
+    def test_a_file_in_the_way_is_refused(self, tiny: Path, tmp_path: Path) -> None:
         """A file is no folder."""
         (tmp_path / "manual").write_text("a file")
         with pytest.raises(InputError):
-            build(plant, tmp_path / "manual")
+            build(tiny, tmp_path / "manual")
         assert (tmp_path / "manual").read_text() == "a file"
 
 

@@ -78,7 +78,7 @@ def test_a_system_that_cannot_be_calculated_says_why_and_stops_no_other(hostile:
 @pytest.mark.parametrize(
     "dirty",
     [
-        '<script>alert(1)</script>',
+        "<script>alert(1)</script>",
         '<a href="javascript:alert(1)">x</a>',
         '<a href="JaVaScRiPt:alert(1)">x</a>',
         '<a href="data:text/html,x">x</a>',

@@ -30,9 +30,7 @@ def test_every_link_and_anchor_resolves(pages: dict[Path, ReadPage]) -> None:
                 assert parts.scheme in EXTERNAL | {"data"}, (path, link)
                 continue
             target = (path.parent / unquote(parts.path)).resolve() if parts.path else path
-            if not target.is_file():
-                broken.append((path.name, tag, link))
-            elif parts.fragment and unquote(parts.fragment) not in pages[target].ids:
+            if not target.is_file() or (parts.fragment and unquote(parts.fragment) not in pages[target].ids):
                 broken.append((path.name, tag, link))
     assert broken == []
 

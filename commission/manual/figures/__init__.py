@@ -5,7 +5,8 @@ from commission.manual.figures.history import HistoryChart, draw_history
 from commission.manual.figures.ph import PhDiagram, draw_ph
 from commission.manual.figures.style import STYLE_VERSION, by_night
 
-__all__ = ["STYLE_VERSION",
+__all__ = [
+    "STYLE_VERSION",
     "Chart",
     "HistoryChart",
     "Line",

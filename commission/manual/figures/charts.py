@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
+from typing import ClassVar
 
 from commission.manual.figures.style import COLOURS, INK, new_figure, our_style, to_svg
 
@@ -19,6 +21,8 @@ class Line:
 @dataclass(frozen=True, slots=True)
 class Chart:
     """A chart: title, axis labels, the shared x values, up to three lines, and the x of the rated point."""
+
+    inches: ClassVar[tuple[float, float]] = (6.2, 3.7)
 
     title: str
     x_label: str
@@ -37,7 +41,7 @@ def _label_heights(ends: list[float], low: float, high: float) -> list[float]:
     gap = 0.085 * (high - low)
     order = sorted(range(len(ends)), key=lambda i: ends[i])
     placed = list(ends)
-    for a, b in zip(order, order[1:], strict=False):
+    for a, b in pairwise(order):
         placed[b] = max(placed[b], placed[a] + gap)
     over = max((placed[i] for i in order), default=high) - high
     return [p - over for p in placed] if over > 0 else placed
@@ -46,7 +50,7 @@ def _label_heights(ends: list[float], low: float, high: float) -> list[float]:
 def draw_chart(chart: Chart) -> bytes:
     """The chart as SVG bytes. Names stand at the ends of the lines, so that no colour has to be matched."""
     with our_style():
-        figure, axes = new_figure(6.2, 3.7)
+        figure, axes = new_figure(*chart.inches)
         figure.subplots_adjust(left=0.115, right=0.70, top=0.90, bottom=0.165)
         ends = []
         for colour, style, line in zip(COLOURS, ("-", "-", "--"), chart.lines, strict=False):

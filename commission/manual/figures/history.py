@@ -4,13 +4,16 @@ from __future__ import annotations
 
 import datetime as dt
 from dataclasses import dataclass
+from typing import ClassVar
 
 from commission.manual.figures.style import FIRST, INK, SECOND, new_figure, our_style, to_svg
 
 
 @dataclass(frozen=True, slots=True)
 class HistoryChart:
-    """Deviations over the visits in display units; `half` is the expanded uncertainty; `significant` marks each point."""
+    """Deviations over the visits in display units; `half` is the expanded uncertainty, `significant` marks points."""
+
+    inches: ClassVar[tuple[float, float]] = (6.2, 3.1)
 
     title: str
     y_label: str
@@ -25,7 +28,7 @@ def draw_history(chart: HistoryChart) -> bytes:
     from matplotlib.ticker import FixedLocator, FuncFormatter, NullLocator
 
     with our_style():
-        figure, axes = new_figure(6.2, 3.1)
+        figure, axes = new_figure(*chart.inches)
         figure.subplots_adjust(left=0.115, right=0.965, top=0.88, bottom=0.15)
         x = [d.toordinal() for d in chart.days]
         axes.axhline(0.0, color=INK, linewidth=1.0)

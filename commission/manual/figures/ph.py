@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import ClassVar
 
 from commission.manual.figures.style import FIRST, INK, LINE, SOFT, new_figure, our_style, to_svg
 
@@ -10,6 +11,8 @@ from commission.manual.figures.style import FIRST, INK, LINE, SOFT, new_figure, 
 @dataclass(frozen=True, slots=True)
 class PhDiagram:
     """Saturation lines and the cycle: enthalpies in kJ/kg, pressures in bar absolute; state labels in cycle order."""
+
+    inches: ClassVar[tuple[float, float]] = (6.2, 4.4)
 
     title: str
     bubble: tuple[tuple[float, float], ...]
@@ -25,7 +28,7 @@ def draw_ph(diagram: PhDiagram) -> bytes:
     from matplotlib.ticker import FixedLocator, FuncFormatter, NullLocator
 
     with our_style():
-        figure, axes = new_figure(6.2, 4.4)
+        figure, axes = new_figure(*diagram.inches)
         figure.subplots_adjust(left=0.115, right=0.965, top=0.91, bottom=0.14)
         axes.set_yscale("log")
         dome = (*diagram.bubble, *reversed(diagram.dew))

@@ -27,7 +27,9 @@ _NIGHT = {
     SECOND: "#86d1bd",
     THIRD: "#b3c0f0",
 }
-_FONTS = "'Avenir Next', 'Segoe UI', 'Helvetica Neue', Roboto, 'Noto Sans', 'Liberation Sans', 'DejaVu Sans', sans-serif"
+_FONTS = (
+    "'Avenir Next', 'Segoe UI', 'Helvetica Neue', Roboto, 'Noto Sans', 'Liberation Sans', 'DejaVu Sans', sans-serif"
+)
 
 
 @contextmanager
