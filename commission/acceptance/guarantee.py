@@ -19,16 +19,14 @@ if TYPE_CHECKING:
     from commission.prediction import Prediction, SystemModel
 
 CarriedBy = Literal["design model", "supplier's table", "as stated"]
-DEFAULT_LARGEST_UNCERTAINTY = 0.05
-"""Largest expanded uncertainty of a capacity, as a share, where the contract states no tolerance that could say it:
-EN 14511-3, heating and cooling capacities (from memory)."""
 _NEAR: Mapping[Kind, float] = {Kind.TEMPERATURE: 0.5, Kind.RATIO: 0.05}
 _NEAR_SHARE = 0.05
 
 
 @dataclass(frozen=True, slots=True)
 class Terms:
-    """A guarantee in SI. `below` and `above` are shares of the value, None where the contract is silent."""
+    """A guarantee in SI. `below`, `above` and `largest` (uncertainty) are shares of the value, None where the contract
+    is silent."""
 
     quantity: str
     value: float
@@ -40,6 +38,7 @@ class Terms:
     route: str | None = None
     source: str | None = None
     includes: tuple[str, ...] | None = None
+    largest: float | None = None
 
     def limits(self, value: float) -> tuple[float | None, float | None]:
         """Lower and upper limit of the measured value where `value` is the guaranteed one of the day.
@@ -53,13 +52,17 @@ class Terms:
         upper = None if self.above is None else value * (1.0 + self.above)
         return value * (1.0 - (self.below or 0.0)), upper
 
-    def largest_expanded_uncertainty(self, value: float) -> float:
-        """The expanded uncertainty up to which the simple rule is fair: the tolerance, which is meant to hold it.
+    def largest_expanded_uncertainty(self, value: float) -> float | None:
+        """The expanded uncertainty up to which a test may decide by the simple rule, None where nothing is agreed.
 
-        Where no tolerance is stated, the share of `DEFAULT_LARGEST_UNCERTAINTY`.
+        The tool adds no such condition of its own: nearly all contracts accept the measured value as it is.
         """
+        return None if self.largest is None else self.largest * value
+
+    def coarser_than_tolerance(self, expanded: float, value: float) -> bool:
+        """Whether a test with this expanded uncertainty is coarser than the tolerance that is meant to hold it."""
         stated = [t for t in (self.below, self.above) if t]
-        return (min(stated) if stated else DEFAULT_LARGEST_UNCERTAINTY) * value
+        return bool(stated) and expanded > min(stated) * value
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,6 +87,7 @@ def terms_of(guarantee: Guarantee) -> Terms:
         guarantee.route,
         guarantee.source,
         guarantee.includes,
+        guarantee.largest_uncertainty,
     )
 
 

@@ -140,11 +140,26 @@ def judge(
         warnings.append(f"the test sheet is one of {sheet.system}, not of {model.system_id}")
     if mode == "test" and verdicts and sheet is None:
         warnings.append("no frozen test sheet: the guarantees are judged by the description as it stands today")
+    warnings += [text for text in map(coarse, verdicts) if text]
     return Judgement(
         model.system_id, mode, found.conditions, found.measured, found.derived, found.expectations, found.deviations,
         found.routes, found.refusals, found.closures, tuple(verdicts), still, found.impossible, found.not_judged,
         tuple(warnings), sheet.digest if sheet is not None else None,
     )  # fmt: skip
+
+
+def coarse(verdict: GuaranteeVerdict) -> str | None:
+    """What to say where the contract's rule decides although the test is coarser than the tolerance."""
+    decision, budget, carried = verdict.decision, verdict.budget, verdict.guaranteed
+    if decision is None or budget is None or carried is None or verdict.outcome == "undecided":
+        return None
+    if decision.rule != "simple" or not verdict.terms.coarser_than_tolerance(budget.expanded(), carried.value):
+        return None
+    return (
+        f"{NOMENCLATURE[verdict.terms.quantity].label}: the test (± {100 * budget.expanded() / carried.value:.0f} %) is "
+        "coarser than the tolerance. The contract's simple rule decides all the same; the plant conforms with a "
+        f"probability of {100 * decision.probability_of_conformity:.0f} %"
+    )
 
 
 def withheld_by(contradictions: Iterable[Impossible], still: Iterable[Steadiness]) -> str | None:

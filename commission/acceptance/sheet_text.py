@@ -96,7 +96,8 @@ def _terms_out(terms: Terms) -> dict[str, Any]:
         "carried_by": terms.carried_by,
     }
     optional = {"tolerance_below": terms.below, "tolerance_above": terms.above, "route": terms.route,
-                "source": terms.source, "includes": list(terms.includes) if terms.includes else None}  # fmt: skip
+                "source": terms.source, "includes": list(terms.includes) if terms.includes else None,
+                "largest_uncertainty": terms.largest}  # fmt: skip
     data.update({k: _size(v) if isinstance(v, float) else v for k, v in optional.items() if v is not None})
     return data
 
@@ -209,6 +210,7 @@ def _terms(quantity: str, data: Mapping[str, Any]) -> Terms:
         _maybe(str, data.get("route")),
         _maybe(str, data.get("source")),
         _maybe(lambda words: tuple(str(w) for w in words), data.get("includes")),
+        _maybe(float, data.get("largest_uncertainty")),
     )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import pytest
 
 from commission.acceptance import Budget, Component, Measured, Terms, carry, terms_of
-from commission.acceptance.guarantee import DEFAULT_LARGEST_UNCERTAINTY, supplier_grid
+from commission.acceptance.guarantee import supplier_grid
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel
@@ -43,11 +43,14 @@ def test_limits() -> None:
     assert Terms("power_input", 100.0, {}).limits(100.0) == (None, 100.0)
 
 
-def test_largest_uncertainty_is_the_tolerance() -> None:
-    """A tolerance is meant to hold the uncertainty of the test; without one EN 14511-3 gives 5 %."""
-    assert Terms("cooling_capacity", 1.0, {}, below=0.08).largest_expanded_uncertainty(100.0) == pytest.approx(8.0)
-    assert Terms("cooling_capacity", 1.0, {}, 0.08, 0.04).largest_expanded_uncertainty(100.0) == pytest.approx(4.0)
-    assert Terms("cooling_capacity", 1.0, {}).largest_expanded_uncertainty(100.0) == 100 * DEFAULT_LARGEST_UNCERTAINTY
+def test_only_the_contract_bounds_the_uncertainty_of_a_test() -> None:
+    """What the contract states bounds it; where it is silent nothing does, and a coarse test is only named as one."""
+    assert Terms("cooling_capacity", 1.0, {}, below=0.08).largest_expanded_uncertainty(100.0) is None
+    stated = Terms("cooling_capacity", 1.0, {}, below=0.08, largest=0.1)
+    assert stated.largest_expanded_uncertainty(100.0) == pytest.approx(10.0)
+    assert stated.coarser_than_tolerance(8.5, 100.0)
+    assert not stated.coarser_than_tolerance(7.5, 100.0)
+    assert not Terms("cooling_capacity", 1.0, {}).coarser_than_tolerance(50.0, 100.0)
 
 
 def test_at_its_own_condition_nothing_is_added(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:

@@ -4,11 +4,13 @@ from __future__ import annotations
 
 import datetime as dt
 import json
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
 
-from commission.acceptance import Judgement, Reading, judge, make_sheet
+from commission.acceptance import Judgement, Reading, carry, judge, make_sheet
+from commission.acceptance.judgement import coarse, decide_guarantee
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel, fit
@@ -114,6 +116,25 @@ def test_incapable_test_is_undecided_and_says_what_would_decide(
     assert verdict.withheld is None
     assert verdict.what_would_decide is not None
     assert "heat lost by the compressor shell" in verdict.what_would_decide
+
+
+def test_where_the_contract_is_silent_a_coarse_test_decides_and_is_named(
+    cold_room: LoadedPlant, cold_room_model: SystemModel
+) -> None:
+    """The same visit without an agreed largest uncertainty: the measured value decides, and its coarseness is said."""
+    power = 0.90 * cold_room_model.predict().expected["power_input"].value
+    readings = visit(cold_room, cold_room_model, power_input=power)
+    agreed = judge(cold_room, cold_room_model, *readings, "test", since_start=3600.0).guarantees[0]
+    assert agreed.measured is not None
+    assert agreed.guaranteed is not None
+    silent = replace(agreed.terms, largest=None)
+    carried = carry(silent, {}, cold_room_model)
+    decision, budget = decide_guarantee(silent, agreed.measured, carried)
+    assert decision.outcome == "conforming"
+    said = coarse(replace(agreed, terms=silent, decision=decision, budget=budget, guaranteed=carried.explained))
+    assert said is not None
+    assert f"probability of {100 * decision.probability_of_conformity:.0f} %" in said
+    assert coarse(agreed) is None
 
 
 def test_expired_calibration_is_carried_along(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:

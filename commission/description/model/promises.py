@@ -107,6 +107,11 @@ class Guarantee(Part):
     decision: DecisionRule = Field(
         "simple", description="simple: measured value against the limit; guarded: uncertainty is deducted (JCGM 106)"
     )
+    largest_uncertainty: Ratio | None = Field(
+        None,
+        description="expanded uncertainty (95 %), as a share of the guaranteed value, up to which a test may decide by "
+        "the simple rule; where the contract says nothing, the measured value alone decides",
+    )
     carried_by: Literal["design model", "supplier's table", "as stated"] = Field(
         "design model",
         description="how the value is carried to the day's condition: in the ratio of the agreed design model, along "
