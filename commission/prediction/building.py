@@ -12,6 +12,7 @@ from commission.machine import (
     GasCoolerPressure,
     HeadPressure,
     Media,
+    PressureBy,
     SingleStage,
     Stream,
     SuctionLine,
@@ -24,6 +25,7 @@ from commission.machine import (
 from commission.prediction.compressors import compressor_of
 from commission.prediction.facts import CONDENSER_FAN, EVAPORATOR_FAN, Facts
 from commission.properties import Liquid
+from commission.quantities import Pressure
 
 KELVIN = 273.15
 Machine = SingleStage | Transcritical
@@ -239,27 +241,28 @@ def gas_cooler_pressure(facts: Facts, a: Mapping[str, float]) -> GasCoolerPressu
     """
     control = facts.system.controls.gas_cooler_pressure
     hot_water = facts.system.duty == "water_heating" and facts.sink_liquid is not None
-    if control is None and hot_water:
-        return GasCoolerPressure("fixed set point", a["hot_water_pressure"] * facts.fluid.p_critical)
+    least = hot_water and (control is None or (control.lowest is None and control.set_point is None))
+    lowest = a["hot_water_pressure"] * facts.fluid.p_critical if least else 0.0
+    follows: PressureBy = "follows the gas-cooler outlet"
     if control is None:
-        return GasCoolerPressure("follows the gas-cooler outlet", factor=1 + a["gas_cooler_pressure_departure"])
+        return GasCoolerPressure(follows, factor=1 + a["gas_cooler_pressure_departure"], lowest=lowest)
     if control.by == "charge alone":
         raise NotCalculatedError(
             "the high pressure is left to the charge alone, which this model does not carry for carbon dioxide: state "
             "under controls.gas_cooler_pressure a set point or that it follows the gas-cooler outlet"
         )
-    set_point = facts.loaded.absolute(control.set_point) if control.set_point is not None else None
-    if control.by == "fixed set point" and set_point is None:
+    if control.by == "fixed set point" and control.set_point is None:
         raise NotCalculatedError("controls.gas_cooler_pressure is a fixed set point, but does not say which")
-    least = 0.0
-    if hot_water and control.lowest is None and set_point is None:
-        least = a["hot_water_pressure"] * facts.fluid.p_critical
+
+    def kept(stated: Pressure | None, otherwise: float) -> float:
+        return facts.loaded.absolute(stated) + a["high_pressure_departure"] if stated is not None else otherwise
+
     return GasCoolerPressure(
         control.by,
-        set_point,
-        factor=1 + a["gas_cooler_pressure_departure"] if set_point is None else 1.0,
-        lowest=facts.loaded.absolute(control.lowest) if control.lowest is not None else least,
-        highest=facts.loaded.absolute(control.highest) if control.highest is not None else HIGHEST,
+        kept(control.set_point, 0.0) or None,
+        factor=1 + a["gas_cooler_pressure_departure"] if control.set_point is None else 1.0,
+        lowest=kept(control.lowest, lowest),
+        highest=kept(control.highest, HIGHEST),
     )
 
 

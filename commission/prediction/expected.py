@@ -147,3 +147,8 @@ def beats_carnot(facts: Facts, values: Mapping[str, float]) -> bool:
     limit = values.get("carnot_cop")
     heat = values["heating_capacity" if heats(facts) else "cooling_capacity"]
     return limit is not None and heat / values["compressor_power"] > limit
+
+
+def frosts(facts: Facts, point: OperatingPoint) -> bool:
+    """Whether an outdoor coil collects frost: its refrigerant is below freezing. In a cold room that is daily work."""
+    return heats(facts) and facts.source_liquid is None and point.balance.source_drive < 273.15

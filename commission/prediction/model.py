@@ -11,7 +11,7 @@ from commission.errors import CommissionError, InputError, NotCalculatedError, P
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete
-from commission.prediction.expected import Found, beats_carnot, expected_values
+from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of
 from commission.prediction.fitting import SCATTER, Fit, fit_system
@@ -197,11 +197,20 @@ class SystemModel:
         changes = []
         for n, variant in enumerate(self.fit.variants):
             asked = {k: v for k, v in whole.items() if k not in filled or k.endswith("_temperature")}
-            found, point = self._values(variant.plan, asked, starts.variants.get(n, start))
+            try:
+                found, point = self._values(variant.plan, asked, starts.variants.get(n, start))
+            except NotCalculatedError as error:
+                raise NotCalculatedError(
+                    f"this condition lies at the edge of what the machine can do: within the range of "
+                    f"{self._title(variant.cause)} there is no balance ({error})"
+                ) from error
             starts.variants[n] = point
             change = {k: variant.sign * (found.values[k] - v) for k, v in nominal.values.items() if k in found.values}
             changes.append((variant.cause, change, point))
         return changes
+
+    def _title(self, cause: str) -> str:
+        return f"the assumption '{self.assumptions[cause].title}'" if cause in self.assumptions else f"the {cause}"
 
     def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
         whole, filled, outside = self._complete(conditions)
@@ -223,6 +232,10 @@ class SystemModel:
         self._own_parts(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
         warnings = [*outside, *point.warnings]
+        if frosts(self.facts, point):
+            warnings.append(
+                "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
+            )
         if beats_carnot(self.facts, nominal.values):
             warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")
         return Prediction(

@@ -126,3 +126,10 @@ def test_a_wetter_room_gives_more_capacity_and_less_sensible_heat(written: Writt
     assert dry["cooling_capacity"].value == pytest.approx(5000, rel=1e-3)
     assert 1.04 < wet["cooling_capacity"].value / dry["cooling_capacity"].value < 1.15
     assert wet["sensible_heat_ratio"].value < dry["sensible_heat_ratio"].value - 0.1
+
+
+def test_a_frosting_coil_is_said(written: Written) -> None:
+    """An outdoor coil below freezing collects frost: said in winter, not in mild weather."""
+    model = fit(written(AIR_HEAT_PUMP), "it")
+    assert any("frost" in w for w in model.predict({"heat_source_inlet_temperature": 274.15}).warnings)
+    assert not any("frost" in w for w in model.predict({"heat_source_inlet_temperature": 288.15}).warnings)
