@@ -155,9 +155,10 @@ def coarse(verdict: GuaranteeVerdict) -> str | None:
         return None
     if decision.rule != "simple" or not verdict.terms.coarser_than_tolerance(budget.expanded(), carried.value):
         return None
+    share = 100 * budget.expanded() / carried.value
     return (
-        f"{NOMENCLATURE[verdict.terms.quantity].label}: the test (± {100 * budget.expanded() / carried.value:.0f} %) is "
-        "coarser than the tolerance. The contract's simple rule decides all the same; the plant conforms with a "
+        f"{NOMENCLATURE[verdict.terms.quantity].label}: the test (± {share:.0f} %) is coarser than the tolerance. The "
+        "contract's simple rule decides all the same; the plant conforms with a "
         f"probability of {100 * decision.probability_of_conformity:.0f} %"
     )
 

@@ -46,7 +46,8 @@ systems:
            power_input: 1.55 kW}
     guarantee:
       - {quantity: cooling_capacity, at: {heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C},
-         value: 3.3 kW, tolerance: {below: 5 %}, decision: simple, largest_uncertainty: 5 %, route: compressor heat balance}
+         value: 3.3 kW, tolerance: {below: 5 %}, decision: simple, largest_uncertainty: 5 %,
+         route: compressor heat balance}
       - {quantity: power_input, at: {heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C},
          value: 1.7 kW, tolerance: {above: 5 %}, decision: guarded}
     measured_with: {power_input: power meter}
@@ -80,7 +81,8 @@ systems:
          power_input: 9.7 kW, includes: [compressor]}
     guarantee:
       - {quantity: cooling_capacity, at: {heat_source_inlet_temperature: 12 °C, heat_sink_inlet_temperature: 30 °C},
-         value: 38 kW, tolerance: {below: 5 %}, decision: simple, largest_uncertainty: 5 %, carried_by: supplier's table, route: liquid side}
+         value: 38 kW, tolerance: {below: 5 %}, decision: simple, largest_uncertainty: 5 %,
+         carried_by: supplier's table, route: liquid side}
       - {quantity: cooling_cop, at: {heat_source_inlet_temperature: 12 °C, heat_sink_inlet_temperature: 30 °C},
          value: "4.3", tolerance: {below: 5 %}, decision: guarded, carried_by: as stated, route: liquid side}
     measured_with:
