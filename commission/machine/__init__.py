@@ -3,7 +3,7 @@
 from commission.machine.circuit import Parts, SuctionLine
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
-from commission.machine.gas_cooler import GasCoolerPressure, best_pressure, liao_best_pressure
+from commission.machine.gas_cooler import GasCoolerPressure, PressureBy, best_pressure, liao_best_pressure
 from commission.machine.head_pressure import HeadPressure
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
@@ -32,6 +32,7 @@ __all__ = [
     "OperatingPoint",
     "Parts",
     "PolynomialCompressor",
+    "PressureBy",
     "SingleStage",
     "Solution",
     "StatePoint",
