@@ -23,6 +23,7 @@ from commission.records.read import RecordError, read_record, records_folder
 from commission.records.recomputation import Recomputation, recompute
 from commission.records.record import CheckedAnswer, Record, SiteReading
 from commission.records.sums import FileFinding, SumsError
+from commission.records.text import is_filed
 
 __all__ = [
     "CheckedAnswer",
@@ -56,6 +57,7 @@ __all__ = [
     "guarantee_sentence",
     "history",
     "in_force",
+    "is_filed",
     "items_csv",
     "judge_record",
     "open_items",

@@ -81,6 +81,8 @@ class FrozenGuarantee(Part):
     at: dict[str, Si] = Field(default_factory=dict, description="condition of the contract, SI")
     below: Si | None = Field(None, description="tolerance below, a share")
     above: Si | None = Field(None, description="tolerance above, a share")
+    largest: Si | None = Field(None, description="agreed largest expanded uncertainty, a share")
+    includes: tuple[str, ...] = Field((), description="what a guaranteed power counts")
     rule: str
     carried_by: str
     source: str | None = Field(None, description="clause of the contract")
@@ -108,6 +110,17 @@ class FrozenRoute(Part):
     value: Si | None = Field(None, description="W")
     uncertainty: Si | None = Field(None, description="standard uncertainty, W")
     refused: str | None = Field(None)
+
+
+class FrozenClosure(Part):
+    """Two routes held against each other."""
+
+    quantity: str = Field(description="the capacity that both give, or `first law`")
+    first: str
+    second: str
+    difference: Si = Field(description="W")
+    expanded: Si = Field(description="expanded uncertainty of the difference, 95 %, W")
+    significant: YesNo
 
 
 class FrozenCheck(Part):
@@ -173,6 +186,7 @@ class FiledBlock(Part):
         default_factory=dict, description="against the model, where the deviations are those from a frozen sheet"
     )
     routes: tuple[FrozenRoute, ...] = Field(())
+    closures: tuple[FrozenClosure, ...] = Field((), description="two routes held against each other")
     not_judged: dict[str, str] = Field(default_factory=dict, description="why a reading has no deviation")
     guarantees: tuple[FrozenGuarantee, ...] = Field(())
     warnings: tuple[str, ...] = Field(())

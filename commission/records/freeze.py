@@ -55,6 +55,7 @@ def freeze(
         "deviations": _deviations(judgement.deviations) if judgement else {},
         "model_deviations": _deviations(by_model.deviations) if by_model else {},
         "routes": _routes(judgement) if judgement else [],
+        "closures": _closures(judgement) if judgement else [],
         "not_judged": dict(judgement.not_judged)
         if judgement
         else {"readings": reason}
@@ -177,6 +178,20 @@ def _routes(judgement: Judgement) -> list[dict[str, Any]]:
     return found + [{"route": r.route, "quantity": r.key, "refused": r.reason} for r in judgement.refusals]
 
 
+def _closures(judgement: Judgement) -> list[dict[str, Any]]:
+    return [
+        {
+            "quantity": c.quantity,
+            "first": c.first,
+            "second": c.second,
+            "difference": c.difference,
+            "expanded": c.budget.expanded(),
+            "significant": c.significant,
+        }
+        for c in judgement.closures
+    ]
+
+
 def _guarantee(verdict: GuaranteeVerdict) -> dict[str, Any]:
     terms, decision = verdict.terms, verdict.decision
     return {
@@ -186,6 +201,8 @@ def _guarantee(verdict: GuaranteeVerdict) -> dict[str, Any]:
         "at": dict(terms.at),
         "below": terms.below,
         "above": terms.above,
+        "largest": terms.largest,
+        "includes": list(terms.includes or ()),
         "rule": terms.rule,
         "carried_by": terms.carried_by,
         "source": terms.source,

@@ -51,7 +51,7 @@ def judged_by(
 ) -> Judgement:
     """The judgement by this sheet, or by the description as it stands where there is none.
 
-    An unbalance is kept in the record, but no model expects one.
+    An unbalance that was worked out from phases is left to acceptance, which has the phases too.
 
     Raises:
         NotCalculatedError: the system cannot be calculated.
@@ -69,6 +69,7 @@ def judged_by(
         on=record.started.date(),
         since_start=record.file.since_start,
         since_defrost=record.file.since_defrost,
+        upsets=record.file.upsets,
     )
 
 
@@ -118,4 +119,4 @@ def site_reading(reading: SiteReading) -> Reading:
     """A reading in the form that acceptance takes."""
     from commission.acceptance.instruments import Reading
 
-    return Reading(reading.key, reading.value, reading.instrument, reading.where or "", reading.samples)
+    return Reading(reading.key, reading.value, reading.instrument, reading.where or "", reading.samples, reading.phases)

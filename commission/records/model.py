@@ -12,6 +12,8 @@ from commission.description.fields import Date, Duration, YesNo
 from commission.description.model import Part
 
 Mode = Literal["trim", "test"]
+Upset = Literal["liquid injection", "vapour injection", "hot gas bypass", "oil cooling", "water-cooled compressor"]
+"""The words of `commission.acceptance.routes.UPSETS`, which a test holds together."""
 
 
 def _moment(value: Any) -> dt.datetime:
@@ -103,6 +105,7 @@ class RecordFile(Part):
     ended: Moment | None = Field(None, description="date, time and zone at which reading ended")
     since_start: Duration | None = Field(None, description="running time since the compressor last started")
     since_defrost: Duration | None = Field(None, description="time since the last defrost ended")
+    upsets: tuple[Upset, ...] = Field((), description="what ran that upsets the heat balance of the compressor")
     people: dict[str, Visitor] = Field(min_length=1, description="roles (operator, witness, ...) and people")
     conditions: dict[str, Annotated[Measured, BeforeValidator(_value_alone)]] = Field(
         default_factory=dict, description="what the plant cannot choose: the media on both sides, the barometer"

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 import textwrap
 from collections.abc import Mapping
+from pathlib import Path
 from typing import Any
 
 from commission.records.disk import digest_of
@@ -65,6 +66,14 @@ def seal_holds(content: bytes) -> bool | None:
         return None
     head, mark, tail = content.rpartition(b"\n" + _SEAL.encode())
     return bool(mark) and tail.rstrip(b"\n").decode("ascii", "replace") == digest_of(head + b"\n")
+
+
+def is_filed(path: Path) -> bool:
+    """Whether the file at `path` is a filed record; False where it cannot be read, which its reader will tell."""
+    try:
+        return seal_holds(path.read_bytes()) is not None
+    except OSError:
+        return False
 
 
 def _can_be_extended(body: str, data: Mapping[str, Any], block: str) -> bool:

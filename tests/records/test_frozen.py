@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
+import random
 from pathlib import Path
 from typing import Any
 
@@ -23,6 +24,7 @@ from commission.records import (
     judge_record,
     open_items,
     read_filed,
+    read_folder,
     read_record,
     recompute,
     records_folder,
@@ -108,7 +110,7 @@ def test_a_changed_assumption_does_not_touch_the_verdict(folder: Path, filed_tes
     assert now.measured is not None
     assert frozen.measured is not None
     assert abs(now.measured.value - frozen.measured) > 100.0
-    assert second.outcome == "undecided"
+    assert second.outcome == "not conforming"
     assert again.verdict == "conforming"
 
 
@@ -283,3 +285,33 @@ def test_a_later_record_of_the_same_minute_gets_its_own_name(
     other = as_expected(model, "test", "2026-05-14T10:20:00+01:00", 2.5, 24.0)
     second = file_record(loaded, write(text=other), model=model)
     assert (first.stem, second.stem) == ("2026-05-14-1020-store-visit", "2026-05-14-1020-store-visit-2")
+
+
+def test_a_damaged_record_never_breaks_the_folder(filed_test: FiledRecord) -> None:
+    """Sixty records damaged at random places: each is read with a broken seal or named, and none ends in a fault."""
+    chance = random.Random(17)
+    text = filed_test.path.read_text(encoding="utf-8")
+    pieces = ("nan", "1e999", "-", "{}", "[]", "'", ": ", "\n", "#", "!!x", "&a", "null")
+    for _ in range(60):
+        at = chance.randrange(len(text))
+        damaged = text[:at] + chance.choice(pieces) + text[at + chance.randrange(20) :]
+        filed_test.path.write_text(damaged, encoding="utf-8")
+        found = read_folder(filed_test.path.parent)
+        assert not found.drafts
+        if found.records:
+            assert not found.records[0].seal_holds
+        else:
+            assert all(p.file == filed_test.path.name for p in found.damaged)
+            assert found.damaged
+
+
+def test_an_upset_takes_the_heat_balance_away(
+    loaded: LoadedPlant, write: Write, test_text: str, model: SystemModel
+) -> None:
+    """With hot gas bypassed the heat balance is refused and frozen as refused; the guarantee stays undecided."""
+    draft = write(("mode: test", "mode: test\nupsets: [hot gas bypass]"), text=test_text)
+    block = read_filed(file_record(loaded, draft, model=model)).filed
+    assert block.verdict == "undecided"
+    assert any(r.route == "compressor heat balance" and r.refused and "bypass" in r.refused for r in block.routes)
+    (item,) = open_items(loaded)
+    assert item.raised_by == "guarantee"

@@ -150,3 +150,13 @@ def test_a_missing_file_and_a_list_are_refused(tmp_path: Path, loaded: LoadedPla
 def test_the_shipped_form_is_the_form_of_the_tests(write: Write, loaded: LoadedPlant) -> None:
     """The record used throughout is accepted as it stands, so that each change above is the only fault."""
     assert read_record(write(), loaded).text == TRIM
+
+
+def test_upsets_are_the_words_of_acceptance() -> None:
+    """What a record may say about upsets of the heat balance is what acceptance knows, word for word."""
+    from typing import get_args
+
+    from commission.acceptance.routes import UPSETS
+    from commission.records.model import Upset
+
+    assert set(get_args(Upset)) == set(UPSETS)
