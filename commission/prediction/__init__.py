@@ -1,7 +1,17 @@
 """A description becomes a fitted model; the model says what each gauge, probe and meter should read."""
 
 from commission.prediction.conditions import ConditionAxis
+from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Prediction, SystemModel, fit
 from commission.prediction.saturation import SaturationRow, saturation_table
 
-__all__ = ["ConditionAxis", "Prediction", "SaturationRow", "SystemModel", "fit", "saturation_table"]
+__all__ = [
+    "ConditionAxis",
+    "HeatUp",
+    "Prediction",
+    "SaturationRow",
+    "SystemModel",
+    "fit",
+    "heat_up",
+    "saturation_table",
+]
