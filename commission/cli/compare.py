@@ -4,10 +4,16 @@ from __future__ import annotations
 
 import json
 from pathlib import Path
+from typing import TYPE_CHECKING, Any
 
 import click
 
 from commission.cli.options import json_option, plant_argument
+from commission.errors import CommissionError
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
+    from commission.records import FiledRecord
 
 
 @click.command(name="compare")
@@ -17,17 +23,48 @@ from commission.cli.options import json_option, plant_argument
 def command(plant: Path, record: Path, as_json: bool) -> None:
     """Judge RECORD, a visit to PLANT, without filing it.
 
-    Leaves with 1 where a guarantee is not met, with 0 where it is met, undecided, or where nothing is guaranteed.
+    A filed record keeps its frozen verdict; what today's description says of it stands beside, labelled so. Leaves with
+    1 where a guarantee is not met, with 0 where it is met, undecided, or where nothing is guaranteed.
     """
-    from commission.cli.judgement import as_text
     from commission.description import load_plant
-    from commission.records import judge_record, read_record
+    from commission.records import is_filed, judge_record, read_filed, read_record
 
     loaded = load_plant(plant)
-    judgement = judge_record(loaded, read_record(record, loaded))
-    if as_json:
-        click.echo(json.dumps(judgement.as_data(), indent=2, ensure_ascii=False))
+    if is_filed(record):
+        outcome, text, data = _filed(loaded, read_filed(record))
     else:
-        click.echo(as_text(judgement, loaded))
-    if judgement.outcome == "not conforming":
+        from commission.cli.judgement import as_text
+
+        judgement = judge_record(loaded, read_record(record, loaded))
+        outcome, text, data = judgement.outcome, as_text(judgement, loaded), judgement.as_data()
+    click.echo(json.dumps(data, indent=2, ensure_ascii=False) if as_json else text)
+    if outcome == "not conforming":
         raise click.exceptions.Exit(1)
+
+
+def _filed(loaded: LoadedPlant, filed: FiledRecord) -> tuple[str, str, dict[str, Any]]:
+    """Frozen verdict first, then the recomputation, or why there is none."""
+    from commission.cli.judgement import as_text
+    from commission.records import recompute
+
+    seal = "its seal holds" if filed.seal_holds else "ITS SEAL IS BROKEN: the file was changed after it was filed"
+    lines = [f"{filed.id}, filed; {seal}", f"verdict, frozen: {filed.filed.sentence}", ""]
+    data: dict[str, Any] = {
+        "outcome": filed.verdict,
+        "filed": {"id": filed.id, "verdict": filed.verdict, "sentence": filed.filed.sentence,
+                  "judged_by": filed.filed.judged_by.model_dump(), "seal_holds": filed.seal_holds},
+    }  # fmt: skip
+    try:
+        again = recompute(loaded, filed)
+    except CommissionError as error:
+        reason = error.problems[0].message
+        lines.append(f"not recomputed: because {reason}")
+        data["not_recomputed"] = reason
+    else:
+        lines += [again.label, *(f"  changed: {change}" for change in again.changed), as_text(again.judgement, loaded)]
+        data["recomputed"] = {
+            "label": again.label,
+            "changed": list(again.changed),
+            "judgement": again.judgement.as_data(),
+        }
+    return filed.verdict, "\n".join(lines), data

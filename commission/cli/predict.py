@@ -30,20 +30,35 @@ COVERAGE = 2.0  # expanded uncertainty as shown and printed: about 95 % (JCGM 10
     metavar="KEY=VALUE",
     help="A condition of the day, such as 'heat_sink_inlet_temperature=31 °C'; may be repeated. Needs --system.",
 )
+@click.option(
+    "--freeze", "name", metavar="NAME", help="Freeze a test sheet of this name instead. Needs --system, --over."
+)
+@click.option("--over", "ranges", multiple=True, metavar="KEY=LOW..HIGH", help="Range of the day for --freeze.")
 @json_option
-def command(plant: Path, system: str | None, pairs: tuple[str, ...], as_json: bool) -> None:
+def command(
+    plant: Path, system: str | None, pairs: tuple[str, ...], name: str | None, ranges: tuple[str, ...], as_json: bool
+) -> None:
     """Print what each gauge, probe and meter of PLANT should read.
 
     Without --at this is the rated condition of each system. Uncertainties are expanded ones, coverage factor 2.
     """
-    if pairs and system is None:
-        raise InputError(Problem("--at needs --system, since each system has conditions of its own", path="--at"))
+    for option, given in (("--at", pairs), ("--freeze", name), ("--over", ranges)):
+        if given and system is None:
+            message = f"{option} needs --system, since each system has conditions of its own"
+            raise InputError(Problem(message, path=option))
+    if ranges and name is None:
+        raise InputError(Problem("--over belongs to --freeze; a single condition is given by --at", path="--over"))
     from commission.description import load_plant
 
     loaded = load_plant(plant)
     known = list(loaded.plant.systems)
     if system is not None:
         check_system(system, known)
+    if name is not None and system is not None:
+        from commission.cli.freeze import freeze
+
+        click.echo(str(freeze(loaded, system, name, ranges)))
+        return
     conditions = parse_conditions(pairs, loaded.barometric_pressure) if pairs else None
     results = {name: _predict(loaded, name, conditions) for name in ([system] if system else known)}
     if as_json:
