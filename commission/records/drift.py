@@ -138,14 +138,13 @@ def _drift(one: Series, point: Point, repeated: bool, display: Display) -> Drift
     quantity = NOMENCLATURE[one.quantity]
     base = next(p for p in one.points if p.record == one.baseline)
     days = (point.started - base.started).days
-    unit = display.spread_unit(quantity.kind)
     size = display.spread(abs(point.change), quantity.kind)
-    spread = display.spread(point.change_expanded, quantity.kind)
-    way = "higher" if point.change > 0 else "lower"
-    again = ", as at the visit before" if repeated else ""
+    spread = f"{display.spread(point.change_expanded, quantity.kind)} {display.spread_unit(quantity.kind)}".strip()
+    way = "risen" if point.change > 0 else "fallen"
+    again = ", as the visit before showed already" if repeated else ""
     sentence = (
-        f"{quantity.label} is {size} {unit} {way} against what is expected than it was at the {one.baseline_is} "
-        f"({one.baseline}), ± {spread} {unit}{again}"
+        f"{quantity.label} has {way} by {size} ± {spread} against what is expected, since the {one.baseline_is} "
+        f"({one.baseline}){again}"
     )
     return Drift(
         one.system, one.quantity, one.unit, one.baseline, point.record, point.change, point.change_expanded,

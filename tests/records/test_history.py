@@ -170,7 +170,7 @@ def test_a_slow_change_is_found_and_recomputed_alike(loaded: LoadedPlant, write:
     assert (pressure.baseline, pressure.latest) == ("2026-05-14-1020-store-visit", "2026-11-10-1020-store-visit")
     assert pressure.days == 180
     assert pressure.per_year == pytest.approx(1.5e5 * 365.25 / 180, rel=0.05)
-    assert "1.50 bar higher" in pressure.sentence
+    assert "has risen by 1.50 ± " in pressure.sentence
     again = {s.quantity: s for s in recomputed_series(loaded, history(loaded), "store", model)}
     frozen_rows = {s.quantity: s for s in series(history(loaded), "store")}
     for quantity, row in frozen_rows.items():
