@@ -24,6 +24,7 @@ FREE = "free condensing"
 HELD = "head pressure held"
 LOWEST = "head pressure below its setting, control at its lowest"
 LIMITED = "suction pressure limited"
+RESTRICTED = "fixed restriction"
 REGULATED = "suction pressure regulated"
 GAS_SHARE = 0.1
 """Conductance of a surface that only superheats gas, over that of a wetted one (common practice, no source)."""
@@ -34,11 +35,14 @@ class SingleStage(Parts):
     """One compressor, evaporator and condenser.
 
     With `head_pressure` the condensing temperature may be held. `greatest_evaporating` is the dew point (K) above which
-    the valve closes (maximum operating pressure): the evaporator then starves and its superheat rises.
+    the valve closes (maximum operating pressure): the evaporator then starves and its superheat rises. `restriction` is
+    the effective area (m2) of an orifice or capillary; the superheat then follows from it, and `superheat` holds where
+    all of the surface is at work.
     """
 
     head_pressure: HeadPressure | None = None
     greatest_evaporating: float | None = None
+    restriction: float | None = None
 
     def balance(self, media: Media, start: Balance | None = None) -> Balance:
         """The balance at this condition; `start` is a neighbouring one that saves work.
@@ -74,6 +78,21 @@ class SingleStage(Parts):
         compression, source, _ = _Circuit(alone, media).cycle(evaporating, condensing)
         return compression, source
 
+    def restriction_for(self, media: Media) -> float:
+        """Effective area (m2) of the fixed restriction that gives the held superheat at this condition.
+
+        Flow = area sqrt(2 rho (p_high - p_low)), the liquid before the restriction (Bernoulli; the usual form for short
+        tubes and orifices, flashing being part of the area).
+
+        Raises:
+            NotCalculatedError: as `balance`.
+        """
+        circuit = _Circuit(replace(self, restriction=None), media)
+        balance = _balance(circuit, None)
+        return balance.compression.flow / circuit.flow_per_area(
+            balance.evaporating_temperature, circuit.second(balance)
+        )
+
     def condensing_unit(
         self, evaporating: float, superheat: float, subcooling: float, media: Media, start: Balance | None = None
     ) -> Balance:
@@ -90,6 +109,8 @@ class SingleStage(Parts):
 
 def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     """The balance with the suction pressure limited where the free one would be above the limit of the valve."""
+    if circuit.machine.restriction is not None:
+        return circuit.restricted(start)
     limit = circuit.machine.greatest_evaporating
     if limit is not None and start is not None and start.regime.startswith(LIMITED):
         start = None
@@ -212,41 +233,85 @@ class _Circuit(Circuit):
             return self.free(share, LOWEST, None)
         return self.result(solution.x[0], condensing, share, HELD, solution)
 
-    def starved(self, evaporating: float) -> Balance:
-        """Evaporating temperature held down by the valve; the superheat follows from the surface that stays dry.
+    def with_superheat(self, superheat: float) -> _Circuit:
+        """The same circuit with another superheat (K) at the evaporator outlet."""
+        return _Circuit(replace(self.machine, superheat=superheat), self.media)
+
+    def superheat_gap(self, superheat: float, evaporating: float, condensing: float) -> float:
+        """Superheat that the dry part of the surface gives less the one tried, in tens of kelvin.
 
         The share of surface that is wetted is the conductance that the heat needs over the one there is. The rest
         superheats the gas towards the medium with `GAS_SHARE` of the conductance, and nothing at a share of 1, so that
-        the superheat is continuous where the valve begins to close.
+        the superheat is then the one that is held.
         """
         machine, source = self.machine, self.media.source
-        control = machine.head_pressure
         whole = machine.evaporator.conductance_at(source.volume_flow)
+        one = self.with_superheat(superheat)
+        compression, taken, _ = one.cycle(evaporating, condensing)
+        drive = one.source_drive(evaporating, condensing)
+        dry = max(1 - machine.evaporator.conductance_for(source, taken, drive) / whole, -0.5)
+        cp = (one.low_side(evaporating)[0].h - machine.refrigerant.dew(evaporating).h) / superheat
+        reach = -math.expm1(-GAS_SHARE * whole * dry / (compression.flow * cp))
+        wanted = machine.superheat + (source.temperature - evaporating - machine.superheat) * reach
+        return (wanted - superheat) / 10.0
 
-        def circuit(superheat: float) -> _Circuit:
-            return _Circuit(replace(machine, superheat=superheat), self.media)
+    def flow_per_area(self, evaporating: float, condensing: float) -> float:
+        """Flow in kg/s through each m2 of effective area of a fixed restriction."""
+        liquid = self.high_side(evaporating, condensing)[1]
+        return math.sqrt(2 * liquid.rho * max(liquid.p - self.machine.refrigerant.dew(evaporating).p, 1.0))
 
-        def gap(superheat: float, condensing: float) -> float:
-            one = circuit(superheat)
-            compression, taken, _ = one.cycle(evaporating, condensing)
-            drive = one.source_drive(evaporating, condensing)
-            dry = max(1 - machine.evaporator.conductance_for(source, taken, drive) / whole, -0.5)
-            cp = (one.low_side(evaporating)[0].h - machine.refrigerant.dew(evaporating).h) / superheat
-            reach = -math.expm1(-GAS_SHARE * whole * dry / (compression.flow * cp))
-            wanted = machine.superheat + (source.temperature - evaporating - machine.superheat) * reach
-            return (wanted - superheat) / 10.0
+    def restricted(self, start: Balance | None) -> Balance:
+        """A fixed restriction: its flow is that of the compressor, and the superheat follows.
+
+        Raises:
+            NotCalculatedError: liquid would reach the compressor, or no balance.
+        """
+        area, held = self.machine.restriction, self.machine.superheat
+        assert area is not None
+
+        def gaps(x: Sequence[float]) -> Sequence[float]:
+            evaporating, condensing, superheat = x
+            one = self.with_superheat(superheat)
+            compression, _, given = one.cycle(evaporating, condensing)
+            through = area * one.flow_per_area(evaporating, condensing)
+            return (
+                self.superheat_gap(superheat, evaporating, condensing),
+                one.sink_gap(condensing, given, 1.0),
+                math.log(compression.flow / through),
+            )
+
+        near = start is not None and len(start.unknowns) == 3
+        jacobian = start.jacobian if near and start is not None else None
+        try:
+            guess = start.unknowns if near and start is not None else (*self.free(1.0, FREE, None).unknowns, held)
+            solution = solve(gaps, guess, largest_step=3.0, jacobian=jacobian)
+        except NotCalculatedError as error:
+            raise NotCalculatedError(
+                f"with the fixed restriction there is no balance with superheated gas: at this condition it would feed "
+                f"liquid to the compressor, or starve the evaporator altogether ({error})"
+            ) from error
+        control = self.machine.head_pressure
+        if control is not None and solution.x[1] < control.hold:
+            raise NotCalculatedError("a fixed restriction together with a held head pressure is not carried")
+        return self.with_superheat(solution.x[2]).result(solution.x[0], solution.x[1], 1.0, RESTRICTED, solution)
+
+    def starved(self, evaporating: float) -> Balance:
+        """Evaporating temperature held down by the valve; the superheat follows from the surface that stays dry."""
+        machine, control = self.machine, self.machine.head_pressure
 
         def both(x: Sequence[float]) -> Sequence[float]:
-            one = circuit(x[0])
-            return gap(x[0], x[1]), one.sink_gap(x[1], one.cycle(evaporating, x[1])[2], 1.0)
+            one = self.with_superheat(x[0])
+            return self.superheat_gap(x[0], evaporating, x[1]), one.sink_gap(x[1], one.cycle(evaporating, x[1])[2], 1.0)
 
         guess = (machine.superheat + 2.0, self.guess()[1])
         solution = solve(both, guess, largest_step=4.0)
         superheat, condensing = solution.x
         if control is None or condensing >= control.hold:
-            return circuit(superheat).result(evaporating, condensing, 1.0, LIMITED, solution)
-        solution = solve(lambda x: (gap(x[0], control.hold),), (superheat,), largest_step=4.0)
-        one = circuit(solution.x[0])
+            return self.with_superheat(superheat).result(evaporating, condensing, 1.0, LIMITED, solution)
+        solution = solve(
+            lambda x: (self.superheat_gap(x[0], evaporating, control.hold),), (superheat,), largest_step=4.0
+        )
+        one = self.with_superheat(solution.x[0])
         given = one.cycle(evaporating, control.hold)[2]
         per_kelvin = given / (one.sink_drive(control.hold) - self.media.sink.temperature)
         sink = self.media.sink.settled(given)

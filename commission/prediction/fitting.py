@@ -19,7 +19,7 @@ from commission.description import Assumption
 from commission.errors import NotCalculatedError
 from commission.prediction.building import Levels, Plan, build
 from commission.prediction.facts import Facts, Used
-from commission.prediction.problem import Problem, prepare
+from commission.prediction.problem import Problem, prepare, restricted
 from commission.prediction.rated import MARGIN, Case, Datum, rated_of
 from commission.prediction.simulating import Seen, observed
 from commission.prediction.table import Array, Table, gaps_of, move, scatter_directions
@@ -155,6 +155,8 @@ def _finish(
         for datum in case.data:
             if datum.assumption is None:
                 misses.append((datum, observed(point, datum.of) / datum.value - 1))
+    variants = tuple(replace(v, plan=restricted(problem, v.plan)) for v in variants)
+    plan = restricted(problem, plan)
     return Fit(plan, levels, variants, used, dict(a), problem.cases, points, scatter, dof, tuple(misses))
 
 
@@ -166,7 +168,7 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     table = Table(problem, values.plain())
     x, gaps, plan, points, matrix = table.minimum(table.pack(start))
     stated = np.array([d.assumption is None for c in problem.cases for d in c.data])
-    dof = int(stated.sum()) - len(problem.free)
+    dof = len(stated) - len(problem.free)
     chi = math.sqrt(float((gaps[: len(stated)][stated] ** 2).sum()) / dof)
     inverse: Array = np.asarray(np.linalg.inv(matrix.T @ matrix), dtype=np.float64)
     variants = []

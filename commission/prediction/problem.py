@@ -6,7 +6,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
-from commission.machine import Transcritical, conductance_for
+from commission.machine import SingleStage, Transcritical, conductance_for
 from commission.prediction.building import (
     SINK_HUMIDITY,
     Levels,
@@ -224,3 +224,21 @@ def plan_of(problem: Problem, a: Mapping[str, float], levels: Levels) -> Plan:
         flow = 1 + a["compressor_flow_departure"]
         levels = replace(levels, swept_flow=flow, isentropic=flow / (1 + a["compressor_power_departure"]))
     return build(facts, a, replace(levels, evaporator=evaporator, condenser=condenser), rated)
+
+
+def restricted(problem: Problem, plan: Plan) -> Plan:
+    """The plan with a fixed restriction sized so that the reference point has the superheat that is held there.
+
+    Other devices are left as they are.
+    """
+    expansion, machine = problem.facts.system.expansion, plan.machine
+    if expansion is None or expansion.device not in ("capillary", "orifice") or not isinstance(machine, SingleStage):
+        return plan
+    case = problem.cases[problem.reference]
+    conditions = {"heat_source_inlet_temperature": plan.rated.source_temperature, **case.conditions}
+    if case.unit is not None:
+        conditions.setdefault("heat_sink_inlet_temperature", plan.rated.sink_temperature)
+    if "heat_source_outlet_temperature" in case.conditions:
+        del conditions["heat_source_inlet_temperature"]
+    size = machine.restriction_for(media(problem.facts, plan, conditions))
+    return replace(plan, machine=replace(machine, restriction=size))

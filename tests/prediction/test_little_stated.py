@@ -133,3 +133,26 @@ def test_a_frosting_coil_is_said(written: Written) -> None:
     model = fit(written(AIR_HEAT_PUMP), "it")
     assert any("frost" in w for w in model.predict({"heat_source_inlet_temperature": 274.15}).warnings)
     assert not any("frost" in w for w in model.predict({"heat_source_inlet_temperature": 288.15}).warnings)
+
+
+def test_superheat_follows_with_a_fixed_restriction(written: Written) -> None:
+    """An orifice feeds less at low head pressure: more superheat when it is cool outdoors, less when it is hot (common
+    practice, no source); at the rated condition the promise is kept."""
+    text = AIR_CONDITIONER + "expansion: {device: orifice, superheat: 8 K}\n"
+    model = fit(written(text), "it")
+    cool, rated, hot = (model.predict({"heat_sink_inlet_temperature": t + 273.15}) for t in (27, 35, 38))
+    assert rated.expected["cooling_capacity"].value == pytest.approx(3500, rel=1e-3)
+    assert rated.expected["superheat"].value == pytest.approx(8.0, abs=0.05)
+    assert cool.expected["superheat"].value > 8.5
+    assert hot.expected["superheat"].value < 7.5
+    assert rated.regime == "fixed restriction"
+
+
+def test_capacity_heat_and_power_together_leave_one_degree_of_freedom(written: Written) -> None:
+    """Where cooling, heating and power are all stated the first law is a third datum, and the fit says its miss."""
+    text = AIR_HEAT_PUMP.replace("heating_capacity: 8 kW", "heating_capacity: 8 kW, cooling_capacity: 6.3 kW")
+    model = fit(written(text), "it")
+    assert model.fit.dof == 1
+    expected = model.predict().expected
+    assert expected["heating_capacity"].value == pytest.approx(8000, rel=0.02)
+    assert 0 < (expected["heating_capacity"].uncertainty or 0) < 300
