@@ -19,6 +19,7 @@ from commission.manual.records_pages import (
     Archive,
     certificates,
     open_items_page,
+    open_lines,
     read_archive,
     record_page,
     records_page,
@@ -65,7 +66,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     findings = review(plant.loaded, models={d.id: d.model for d in plant.systems if d.model is not None})
     standings = {d.id: _standing(d, findings, archive) for d in plant.systems}
     counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
-    book.add(plant_pages.at_a_glance(plant, standings, sum(i.state == "open" for i in archive.items), counts))
+    book.add(plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts))
     book.add(safety_pages.emergency_page(plant))
     for data in plant.systems:
         _system(book, plant, data, documents, archive, texts, store, progress)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Any
 
+from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
@@ -56,27 +57,50 @@ class SheetTable:
     worked_out: tuple[SheetRow, ...]
 
 
+def instrument_words(plant: PlantData, data: SystemData, key: str, value: float | None) -> str:
+    """The instrument that reads a quantity, with its expanded uncertainty (95 %) where it can be stated."""
+    from commission.acceptance import Reading, measure
+    from commission.acceptance.choosing import choose_instrument
+
+    loaded, instruments = plant.loaded, plant.loaded.plant.instruments
+    named = data.system.measured_with.get(key, "")
+    if value is None:
+        return named
+    name = choose_instrument(key, value, instruments, data.system.measured_with, loaded.barometric_pressure)
+    if name is None:
+        return named
+    try:
+        budget = measure(Reading(key, value, name), instruments, loaded.barometric_pressure).budget
+    except NotCalculatedError:
+        return name
+    kind = NOMENCLATURE[key].kind
+    return f"{name} ± {plant.display.spread(budget.expanded(), kind)} {plant.display.spread_unit(kind)}".strip()
+
+
 def _rows(
-    data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...], display: Display
+    plant: PlantData, data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...]
 ) -> tuple[SheetRow, ...]:
     rows = []
+    display = plant.display
     for key in keys:
-        if not any(p.prediction and key in p.prediction.expected for p in points):
+        expected = [p.prediction.expected[key] for p in points if p.prediction and key in p.prediction.expected]
+        if not expected:
             continue
         rows.append(
             SheetRow(
                 label_of(key),
                 unit_of(display, NOMENCLATURE[key].kind),
                 _HOW.get(key, ""),
-                data.system.measured_with.get(key, ""),
+                "" if key in _HOW else instrument_words(plant, data, key, expected[-1].value),
                 tuple(grid_cell(p, key, display) for p in points),
             )
         )
     return tuple(rows)
 
 
-def sheet_tables(data: SystemData, grid: Grid, display: Display) -> tuple[SheetTable, ...]:
+def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetTable, ...]:
     """The grid in tables that fit on a page."""
+    display = plant.display
     n = len(grid.points)
     count = -(-n // _MOST_COLUMNS)
     size = -(-n // count) if count else 0
@@ -84,7 +108,7 @@ def sheet_tables(data: SystemData, grid: Grid, display: Display) -> tuple[SheetT
     for start in range(0, n, size or 1):
         points = grid.points[start : start + size]
         heads = tuple(display.number(p.temperature, Kind.TEMPERATURE, 0) for p in points)
-        tables.append(SheetTable(heads, _rows(data, READ, points, display), _rows(data, WORKED_OUT, points, display)))
+        tables.append(SheetTable(heads, _rows(plant, data, READ, points), _rows(plant, data, WORKED_OUT, points)))
     return tuple(tables)
 
 
@@ -102,19 +126,20 @@ def _plain_rows(data: SystemData, keys: tuple[str, ...], display: Display) -> tu
     )
 
 
-def _condition_rows(data: SystemData, display: Display) -> list[dict[str, str]]:
+def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
     keys = (
         list(data.model.condition_axes)
         if data.model
         else ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
     )
     rated = data.rated.conditions if data.rated else {}
+    display = plant.display
     return [
         {
             "label": label_of(k),
             "unit": unit_of(display, NOMENCLATURE[k].kind),
             "rated": display.number(rated[k], NOMENCLATURE[k].kind) if k in rated else "",
-            "instrument": data.system.measured_with.get(k, ""),
+            "instrument": instrument_words(plant, data, k, rated.get(k)),
         }
         for k in keys
     ]
@@ -125,7 +150,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
     display = plant.display
     grid = data.grid if data.grid and any(p.prediction for p in data.grid.points) else None
     tables = (
-        sheet_tables(data, grid, display)
+        sheet_tables(plant, data, grid)
         if grid
         else (SheetTable((), _plain_rows(data, READ, display), _plain_rows(data, WORKED_OUT, display)),)
     )
@@ -134,7 +159,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "plant_name": plant.name,
         "system_name": data.name,
         "digest": plant.loaded.digest[:12],
-        "conditions": _condition_rows(data, display),
+        "conditions": _condition_rows(plant, data),
         "tables": tables,
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),

@@ -58,6 +58,7 @@ _LABELS = {
     "relief_valve": "Relief valve set at",
     "rating": "Catalogue rating",
     "back_up": "Back-up",
+    "fan_power": "Fan power",
     "source": "Read from",
 }
 """Labels that are not simply the key in words."""
@@ -87,6 +88,8 @@ def kind_of_field(info: FieldInfo) -> Kind | None:
 
 def stated_number(display: Display, value: float, kind: Kind) -> str:
     """A stated value with as many decimals as it takes not to change it by more than half a per cent."""
+    if kind is Kind.DURATION and value >= 7200.0 and value % 3600.0 == 0.0:
+        return f"{value / 3600.0:g} h"
     shown = display.convert(value, kind)
     unit, digits = display.unit_and_digits(kind)
     while digits < 4 and abs(round(shown, digits) - shown) > 0.005 * abs(shown):

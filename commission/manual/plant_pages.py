@@ -13,6 +13,17 @@ from commission.quantities import NOMENCLATURE, Display, Kind, methods
 
 
 @dataclass(frozen=True, slots=True)
+class OpenLine:
+    """One open item in a line of the front page; `due` is a date as text, or None."""
+
+    number: int
+    what: str
+    system: str
+    who: str | None
+    due: str | None
+
+
+@dataclass(frozen=True, slots=True)
 class GlanceSystem:
     """One system on the front page."""
 
@@ -24,7 +35,9 @@ class GlanceSystem:
     because: str | None
 
 
-def at_a_glance(plant: PlantData, standings: dict[str, Standing], open_items: int, counts: dict[str, int]) -> Sheet:
+def at_a_glance(
+    plant: PlantData, standings: dict[str, Standing], open_items: tuple[OpenLine, ...], counts: dict[str, int]
+) -> Sheet:
     """The front page: what plant this is, where each system stands, what is open, what to do next."""
     shown, urgent = [], []
     for data in plant.systems:

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.plant_pages import OpenLine
 from commission.manual.plots import Figure
 from commission.manual.showing import label_of, unit_of
 from commission.manual.states import Visit
@@ -297,6 +298,22 @@ def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[
         for r in archive.of(data.id)
         if _accepted(r, archive)
     )  # fmt: skip
+
+
+def open_lines(plant: PlantData, archive: Archive) -> tuple[OpenLine, ...]:
+    """The open items for the front page: those with the nearest date first, then those without."""
+    names = {d.id: d.name for d in plant.systems}
+    waiting = sorted((i for i in archive.items if i.state == "open"), key=lambda i: (i.due is None, i.due, i.number))
+    return tuple(
+        OpenLine(
+            i.number,
+            i.what if len(i.what) <= 90 else label_of(i.line or "as found"),
+            names.get(i.system, i.system),
+            i.who,
+            i.due.isoformat() if i.due else None,
+        )
+        for i in waiting
+    )
 
 
 def open_items_page(plant: PlantData, archive: Archive) -> Sheet:

@@ -196,8 +196,8 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     (
         "Heat and efficiency",
         (
-            "cooling_capacity", "net_cooling_capacity", "heating_capacity", "refrigerant_flow", "cooling_cop",
-            "heating_cop", "carnot_cop", "running_share",
+            "cooling_capacity", "net_cooling_capacity", "sensible_heat_ratio", "heating_capacity", "refrigerant_flow",
+            "cooling_cop", "heating_cop", "carnot_cop", "running_share",
         ),
     ),
 )  # fmt: skip

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import shutil
 from pathlib import Path
 
@@ -71,8 +72,9 @@ def file_visits(folder: Path) -> None:
 
     plant = folder / "plant.yaml"
     text = plant.read_text(encoding="utf-8")
-    start = text.index("below:", text.index("guarantee:"))
-    plant.write_text(f"{text[:start]}below: 15 %{text[text.index('%', start) + 1 :]}", encoding="utf-8")
+    wider, changed = re.subn(r"below: *[0-9.]+ *%", "below: 15 %", text)
+    assert changed
+    plant.write_text(wider, encoding="utf-8")
     loaded = load_plant(folder)
     system = next(iter(loaded.plant.systems))
     model = fit(loaded, system)
