@@ -25,6 +25,11 @@ def order(stages: tuple[Stage, ...]) -> list[str]:
     return [item.id for stage in stages for item in stage.items]
 
 
+def commissioning(stages: tuple[Stage, ...]) -> tuple[Stage, ...]:
+    """The stages that are worked through once; what comes due again is never done on one visit."""
+    return tuple(stage for stage in stages if stage.id != "upkeep")
+
+
 def items(stages: tuple[Stage, ...]) -> dict[str, Item]:
     """Items by id."""
     return {item.id: item for stage in stages for item in stage.items}
@@ -158,8 +163,8 @@ def test_a_flammable_refrigerant_changes_the_order(cold_room: tuple[Stage, ...],
 
 
 def test_the_cold_room_has_the_right_size(cold_room: tuple[Stage, ...]) -> None:
-    """A small cold room with a flammable refrigerant takes 40 to 60 items."""
-    assert 40 <= len(order(cold_room)) <= 60
+    """A small cold room with a flammable refrigerant takes 40 to 60 items until it is handed over and seen once more."""
+    assert 40 <= len(order(commissioning(cold_room))) <= 60
 
 
 def test_the_cold_room_has_nothing_that_does_not_apply(cold_room: tuple[Stage, ...]) -> None:
@@ -183,8 +188,8 @@ def test_the_cold_room_has_nothing_that_does_not_apply(cold_room: tuple[Stage, .
 
 def test_an_ammonia_chiller_has_the_right_size(yard_stages: Stages) -> None:
     """An ammonia chiller takes 150 to 200 items, a split unit fewer than 60."""
-    assert 150 <= len(order(yard_stages("chiller"))) <= 200
-    assert len(order(yard_stages("split"))) < 60
+    assert 150 <= len(order(commissioning(yard_stages("chiller")))) <= 200
+    assert len(order(commissioning(yard_stages("split")))) < 60
 
 
 @pytest.mark.parametrize("system_id", SYSTEMS)
