@@ -9,7 +9,7 @@ from __future__ import annotations
 import datetime as dt
 import math
 from dataclasses import dataclass
-from pathlib import Path
+from pathlib import Path, PurePosixPath
 from typing import Annotated, Any, Literal
 
 from pydantic import BeforeValidator, Field
@@ -45,6 +45,18 @@ def _si(value: Any) -> float:
 
 
 Si = Annotated[float, BeforeValidator(_si)]
+
+
+def _below(value: Any) -> Any:
+    """A path that stays inside `records/`: a record from elsewhere must not make the manual copy another file."""
+    parts = PurePosixPath(value).parts if isinstance(value, str) else ()
+    if not parts or parts[0] == "/" or ".." in parts or set(str(value)) & set("\\:\0"):
+        message = {"message": "a path below records is wanted here", "allowed": "a relative path without .. and :"}
+        raise PydanticCustomError("meaning", "{message}", message)
+    return value
+
+
+Below = Annotated[str, BeforeValidator(_below)]
 
 
 class FrozenReading(Part):
@@ -134,7 +146,7 @@ class FrozenSheet(Part):
     """By what it was judged."""
 
     by: Literal["frozen test sheet", "targets frozen at filing", "nothing: no verdict was asked for"]
-    sheet: str | None = Field(None, description="path under records/")
+    sheet: Below | None = Field(None, description="path under records/")
     sha256: str | None = Field(None, description="of the sheet's file")
 
 
@@ -154,7 +166,7 @@ class FiledFile(Part):
     """An attached file as it was copied."""
 
     file: str = Field(description="as named in the record")
-    path: str = Field(description="where it was filed, under records/")
+    path: Below = Field(description="where it was filed, under records/")
     sha256: str
     size: int = Field(ge=0, description="bytes")
 

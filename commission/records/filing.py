@@ -18,7 +18,7 @@ from commission.errors import NotCalculatedError, Problem
 from commission.errors import nearest as nearest_word
 from commission.quantities import Display
 from commission.records.disk import ExistsError, FolderError, copy_new, digest_of_file, lock, sweep, write_new
-from commission.records.filed import FORM, FiledRecordError, read_filed, read_folder
+from commission.records.filed import FORM, FiledRecord, FiledRecordError, read_filed, read_folder
 from commission.records.freeze import freeze, items_of_judgement, versions
 from commission.records.items import items_of
 from commission.records.judge import SHEETS, NamedSheet, judge_or_reason, sheet_of
@@ -124,18 +124,34 @@ def file_sheet(loaded: LoadedPlant, sheet: TestSheet, name: str, patience: float
 def check_files(loaded: LoadedPlant) -> tuple[FileFinding, ...]:
     """Each file under `records/` that is altered, missing or not yet listed, by name.
 
-    A record whose own seal does not hold is altered, even where somebody has made the list of digests anew.
+    The records are asked too, so that a list of digests made anew hides nothing: a record whose own seal does not hold
+    is altered, and so is an attached file or a test sheet that is not the one whose digest a record holds.
 
     Raises:
         SumsError: the list of digests cannot be read.
     """
     folder = records_folder(loaded)
     found = {f.name: f for f in compare_sums(folder)}
-    for name in files_in(folder):
-        if "/" not in name and name not in found and seal_holds((folder / name).read_bytes()) is False:
-            digest = digest_of_file(folder / name)
-            found[name] = FileFinding("altered", name, None, digest)
+    for record in read_folder(folder).records:
+        if not record.seal_holds:
+            name = record.path.name
+            found.setdefault(name, FileFinding("altered", name, None, digest_of_file(record.path)))
+        for name, digest in _held_by(record).items():
+            path = folder / name
+            if not path.is_file():
+                found.setdefault(name, FileFinding("missing", name, digest, None))
+            elif (now := digest_of_file(path)) != digest:
+                found[name] = FileFinding("altered", name, digest, now)
     return tuple(found[name] for name in sorted(found))
+
+
+def _held_by(record: FiledRecord) -> dict[str, str]:
+    """Digests that a filed record holds of other files: what was attached, and the sheet it was judged by."""
+    held = {a.path: a.sha256 for a in record.filed.attachments}
+    sheet = record.filed.judged_by
+    if sheet.sheet is not None and sheet.sha256 is not None:
+        held[sheet.sheet] = sheet.sha256
+    return held
 
 
 def find_attachments(record: Record, attach_dir: Path | None) -> tuple[Attached, ...]:

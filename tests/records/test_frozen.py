@@ -235,6 +235,33 @@ def test_an_altered_record_is_found_even_when_the_list_is_made_anew(
     assert not history(loaded)[0].seal_holds
 
 
+def test_an_exchanged_attachment_is_found_even_when_the_list_is_made_anew(
+    loaded: LoadedPlant, write: Write, model: SystemModel, tmp_path: Path
+) -> None:
+    """The record itself holds the digest of what was attached to it."""
+    from commission.records import digest_of_file
+    from commission.records.sums import SUMS_NAME, read_sums, sums_text
+
+    (tmp_path / "photo.jpg").write_bytes(b"as it was")
+    path = file_record(loaded, write(("mode: trim", "mode: trim\nattachments: [photo.jpg]")), model=model)
+    name = read_filed(path).filed.attachments[0].path
+    folder = records_folder(loaded)
+    (folder / name).write_bytes(b"as it should have been")
+    sums = {**read_sums(folder), name: digest_of_file(folder / name)}
+    (folder / SUMS_NAME).write_text(sums_text(sums), encoding="utf-8")
+    assert [(f.state, f.name) for f in check_files(loaded)] == [("altered", name)]
+
+
+@pytest.mark.parametrize("path", ["/etc/hostname", "../../plant.yaml", "a\\\\b", "C:x"])
+def test_a_record_cannot_point_outside_its_folder(filed_test: FiledRecord, path: str) -> None:
+    """A path that leaves `records/` in a record from elsewhere is refused, so that nothing else is ever copied."""
+    text = filed_test.path.read_text(encoding="utf-8")
+    entry = f'  attachments:\n  - {{file: a, path: "{path}", sha256: "0", size: 1}}\n  digests:'
+    filed_test.path.write_text(text.replace("  digests:", entry), encoding="utf-8")
+    with pytest.raises(FiledRecordError, match="below records"):
+        read_filed(filed_test.path)
+
+
 def test_missing_and_unlisted_files_are_named(loaded: LoadedPlant, filed_test: FiledRecord) -> None:
     """A record that went missing and a file that was never filed are both named."""
     filed_test.path.rename(filed_test.path.with_name("stray.yaml"))
