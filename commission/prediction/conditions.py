@@ -41,6 +41,8 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     if once_through(facts, case.conditions):
         flows.pop()
         hot = case.conditions["heat_sink_outlet_temperature"]
+        cold = axes[1].rated
+        axes[1] = ConditionAxis(axes[1].key, cold, min(cold, KELVIN + 5.0), max(cold, hot - 15.0))
         axes.append(ConditionAxis("heat_sink_outlet_temperature", hot, hot - 15.0, hot + 15.0))
     axes += [ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow) for key, flow in flows]
     speed = _speed_axis(facts, rated.speed)

@@ -17,6 +17,7 @@ from commission.prediction.building import (
     condenser_conductance,
     evaporator_conductance,
     media,
+    once_through,
     source_conductance,
     stream,
 )
@@ -55,7 +56,7 @@ def prepare(facts: Facts, a: Mapping[str, float]) -> tuple[Problem, Levels]:
     evaporator = _evaporator(facts, a, rated, case)
     condenser = condenser_conductance(facts, a, rated.sink_flow)
     published = facts.system.compressor.polynomial is not None and not any(c.data for c in cases)
-    missing = _missing(facts, cases, evaporator is None, condenser is None, published)
+    missing = _missing(facts, cases, case, evaporator is None, condenser is None, published)
     cases[middle] = with_data(case, tuple(missing))
     problem = Problem(facts, tuple(cases), middle, published, evaporator is not None, condenser is not None, ())
     return problem, _start(problem, a, rated)
@@ -71,7 +72,9 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
 
 
-def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: bool, published: bool) -> list[Datum]:
+def _missing(
+    facts: Facts, cases: Sequence[Case], case: Case, evaporator: bool, condenser: bool, published: bool
+) -> list[Datum]:
     """Assumptions that stand in for data that nobody states, at the reference case."""
     stated = {d.of for c in cases for d in c.data}
     extra = []
@@ -84,7 +87,7 @@ def _missing(facts: Facts, cases: Sequence[Case], evaporator: bool, condenser: b
     if evaporator and "evaporating_temperature" not in stated:
         assume("source_minus_evaporating", "source_minus_evaporating")
     if condenser and "condensing_temperature" not in stated:
-        assume("condensing_minus_sink_inlet", sink_difference(facts))
+        assume(*sink_difference(facts, case))
     if published:
         return extra
     if not {"power_input", "compressor_power"} & stated and not {"cooling_capacity", "heating_capacity"} <= stated:
@@ -175,15 +178,27 @@ def _dew_points(
         evaporating += 0.35 * _glide(facts, evaporating)
     condensing = given.get("condensing_temperature")
     if condensing is None:
-        difference = 12.0 if problem.fixed_condenser else assumed("condensing_minus_sink_inlet", sink_difference(facts))
-        condensing = rated.sink_temperature + difference
+        of, key = sink_difference(facts, case)
+        difference = 12.0 if problem.fixed_condenser else assumed(of, key)
+        outlet = case.conditions["heat_sink_outlet_temperature"] if of == LIFTED else rated.sink_temperature
+        condensing = outlet + difference
         condensing += 0.5 * _glide(facts, condensing)
     return evaporating, condensing
 
 
-def sink_difference(facts: Facts) -> str:
-    """Key of the assumption that sizes a condenser or a gas cooler of which nothing is stated."""
-    return "gas_cooler_approach" if facts.transcritical else "condensing_minus_sink_inlet"
+LIFTED = "condensing_minus_sink_outlet"
+
+
+def sink_difference(facts: Facts, case: Case) -> tuple[str, str]:
+    """What sizes a condenser or a gas cooler of which nothing is stated: the datum, and the key of its assumption.
+
+    Water that is heated in one pass comes near the condensing temperature at its outlet, whatever its inlet.
+    """
+    if facts.transcritical:
+        return "condensing_minus_sink_inlet", "gas_cooler_approach"
+    if once_through(facts, case.conditions):
+        return LIFTED, LIFTED
+    return "condensing_minus_sink_inlet", "condensing_minus_sink_inlet"
 
 
 def _glide(facts: Facts, temperature: float) -> float:

@@ -87,4 +87,6 @@ def observed(seen: Seen, of: str) -> float:
         return balance.source_inlet_temperature - balance.source_drive
     if of == "condensing_minus_sink_inlet":
         return balance.sink_drive - balance.sink_inlet_temperature
+    if of == "condensing_minus_sink_outlet":
+        return balance.sink_drive - balance.sink_outlet_temperature
     raise KeyError(of)
