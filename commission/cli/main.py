@@ -62,9 +62,11 @@ def main(arguments: Sequence[str] | None = None) -> None:
     # of saturation approximations, which this package replaces by its own saturation lines.
     os.environ.setdefault("COOLPROP_DISABLE_SUPERANCILLARIES_ENTIRELY", "1")
     try:
-        cli.main(args=None if arguments is None else list(arguments), prog_name="commission", standalone_mode=False)
-    except click.exceptions.Exit as stop:
-        sys.exit(stop.exit_code)
+        # Out of standalone mode click returns the exit code of `Exit` instead of leaving with it.
+        code = cli.main(
+            args=None if arguments is None else list(arguments), prog_name="commission", standalone_mode=False
+        )
+        sys.exit(code if isinstance(code, int) else 0)
     except click.Abort:
         click.echo("stopped", err=True)
         sys.exit(130)

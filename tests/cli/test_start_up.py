@@ -10,7 +10,9 @@ import pytest
 
 from tests.conftest import Run
 
-HEAVY = set("CoolProp matplotlib numpy scipy pydantic mkdocs yaml jinja2 nh3 pint platformdirs".split())
+HEAVY = {
+    "CoolProp", "matplotlib", "numpy", "scipy", "pydantic", "mkdocs", "yaml", "jinja2", "nh3", "pint", "platformdirs",
+}  # fmt: skip
 VERBS = ("new", "review", "predict", "compare", "record", "build")
 
 

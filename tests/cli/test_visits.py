@@ -1,0 +1,140 @@
+"""`compare`, `record`, `predict --freeze` and `build`: a visit from blank form to filed verdict and manual."""
+
+from __future__ import annotations
+
+import hashlib
+import json
+import re
+from pathlib import Path
+
+import pytest
+
+from tests.conftest import Run
+
+TESTED = "2026-05-14-1320-cold-room-performance.yaml"
+
+
+def _unfiled(record: Path) -> str:
+    """What a person wrote of a filed record."""
+    return record.read_text(encoding="utf-8").partition("\nfiled:\n")[0] + "\n"
+
+
+def test_a_filed_test_shows_its_frozen_verdict_first(commission: Run, example_folder: Path) -> None:
+    """A filed test that conforms leaves with 0; the recomputation stands beside it, labelled."""
+    done = commission("compare", example_folder, example_folder / "records" / TESTED)
+    assert done.returncode == 0, done.stderr
+    first, _, rest = done.stdout.partition("recomputed with the description as it stands today")
+    assert "verdict, frozen: Cooling capacity: conforming" in first
+    assert "its seal holds" in first
+    assert "the filed verdict stands: conforming" in rest
+
+
+def test_json_of_a_filed_test_says_which_verdict(commission: Run, example_folder: Path) -> None:
+    """The outcome in JSON is the frozen one, with what it was judged by."""
+    done = commission("compare", example_folder, example_folder / "records" / TESTED, "--json")
+    data = json.loads(done.stdout)
+    assert data["outcome"] == "conforming"
+    assert data["filed"]["judged_by"]["by"] == "frozen test sheet"
+    assert data["recomputed"]["judgement"]["outcome"] in {"conforming", "undecided", "not conforming"}
+
+
+def test_a_plant_that_misses_its_guarantee_leaves_with_one(commission: Run, example_copy: Path, tmp_path: Path) -> None:
+    """By the compressor heat balance capacity goes with power: a quarter less power misses the limit by far."""
+    text = re.sub(
+        r"power_input: \{samples: \[[^\]]*\]",
+        "power_input: {samples: [1.10 kW, 1.11 kW, 1.10 kW, 1.10 kW, 1.11 kW]",
+        _unfiled(example_copy / "records" / TESTED),
+    )
+    visit = tmp_path / "poor.yaml"
+    visit.write_text(text.replace("2026-05-14T", "2026-05-15T"), encoding="utf-8")
+    (tmp_path / "room-log-2026-05-07-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    done = commission("compare", example_copy, visit)
+    assert done.returncode == 1, done.stdout + done.stderr
+    assert "not conforming" in done.stdout
+    assert commission("compare", example_copy, visit, "--json").returncode == 1
+
+
+def test_a_blank_form_lists_every_reading_and_item(commission: Run, example_folder: Path) -> None:
+    """The form names the instrument of each reading, and says in which unit."""
+    done = commission("record", example_folder, "--form", "performance", "--system", "cold-room")
+    assert done.returncode == 0, done.stderr
+    assert "suction_pressure: {value: , instrument: low-side gauge" in done.stdout
+    assert "# bar g" in done.stdout
+    assert "performance.power" in done.stdout
+
+
+def test_filing_writes_once_and_lists_the_digest(commission: Run, example_copy: Path, tmp_path: Path) -> None:
+    """A filed visit is printed, listed in the form that sha256sum reads, and review finds nothing changed."""
+    text = _unfiled(example_copy / "records" / TESTED).replace("2026-05-14T", "2026-06-02T")
+    text = re.sub(r"\nitem_updates:.*?(?=\n\w)", "", text, flags=re.DOTALL)
+    visit = tmp_path / "june.yaml"
+    visit.write_text(text, encoding="utf-8")
+    (tmp_path / "room-log-2026-05-07-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    done = commission("record", example_copy, visit)
+    assert done.returncode == 0, done.stderr
+    filed = Path(done.stdout.strip())
+    listed = (example_copy / "records" / "SHA256SUMS").read_text(encoding="utf-8")
+    assert f"{hashlib.sha256(filed.read_bytes()).hexdigest()}  {filed.name}" in listed
+    again = commission("record", example_copy, visit)
+    assert again.stdout == done.stdout
+    assert "records.changed" not in commission("review", example_copy).stdout
+
+
+def test_review_finds_an_altered_record(commission: Run, example_copy: Path) -> None:
+    """One changed character in a filed record is an error that names the file."""
+    record = example_copy / "records" / TESTED
+    record.write_text(record.read_text(encoding="utf-8").replace("trim", "trym", 1) + "\n# changed\n", encoding="utf-8")
+    done = commission("review", example_copy)
+    assert done.returncode == 1
+    assert TESTED in done.stdout
+
+
+def test_a_frozen_sheet_is_written_once(commission: Run, example_copy: Path) -> None:
+    """A sheet frozen over a range starts with its digest; the same name with another range is refused."""
+    options = ("--system", "cold-room", "--freeze", "august")
+    done = commission("predict", example_copy, *options, "--over", "heat_sink_inlet_temperature=20 °C..30 °C")
+    assert done.returncode == 0, done.stderr
+    sheet = Path(done.stdout.strip())
+    assert sheet.read_text(encoding="utf-8").startswith("digest: ")
+    other = commission("predict", example_copy, *options, "--over", "heat_sink_inlet_temperature=20 °C..35 °C")
+    assert other.returncode == 2
+
+
+@pytest.mark.parametrize(
+    ("arguments", "words"),
+    [
+        (["--freeze", "x"], "--freeze needs --system"),
+        (["--system", "cold-room", "--freeze", "x"], "needs the range of the day"),
+        (["--system", "cold-room", "--over", "heat_sink_inlet_temperature=1 °C..2 °C"], "--over belongs to --freeze"),
+        (["--system", "cold-room", "--freeze", "x", "--over", "heat_sink_inlet_temperature=1 °C"], "LOW..HIGH"),
+        (["--system", "cold-room", "--freeze", "x", "--over", "superheat=1 K..2 K"], "not a condition"),
+        (["--system", "cold-room", "--freeze", "x", "--over", "heat_sink_inlet_temperature=9 °C..2 °C"], "must rise"),
+    ],
+)
+def test_freezing_says_what_it_needs(commission: Run, example_copy: Path, arguments: list[str], words: str) -> None:
+    """Wrong use of the freezing options leaves with 2 and says what to write."""
+    done = commission("predict", example_copy, *arguments)
+    assert done.returncode == 2
+    assert words in done.stderr
+
+
+def test_record_needs_a_file_or_a_form(commission: Run, example_folder: Path) -> None:
+    """Neither or both is wrong use."""
+    assert commission("record", example_folder).returncode == 2
+    misspelt = commission("record", example_folder, "--form", "perfrmance", "--system", "cold-room")
+    assert misspelt.returncode == 2
+    assert "performance" in misspelt.stderr
+
+
+def test_build_prints_the_first_page_and_keeps_the_last_good_manual(commission: Run, example_copy: Path) -> None:
+    """The first page is printed; a description that cannot be read leaves with 2 and the manual as it was."""
+    done = commission("build", example_copy, "--no-cache")
+    assert done.returncode == 0, done.stderr
+    first = Path(done.stdout.strip().splitlines()[-1])
+    before = first.read_bytes()
+    plant = example_copy / "plant.yaml"
+    plant.write_text(plant.read_text(encoding="utf-8").replace("charge: 0.45 kg", "charge: 0.45"), encoding="utf-8")
+    broken = commission("build", example_copy, "--no-cache")
+    assert broken.returncode == 2
+    assert re.search(r"plant\.yaml:\d+:\d+: systems\.cold-room\.charge", broken.stderr)
+    assert first.read_bytes() == before
