@@ -61,11 +61,13 @@ def solve(
             count += len(x)
             fresh = True
         step = _limited(_linear(matrix, [-v for v in r]), largest_step)
-        moved = _move(residuals, x, r, step) if step is not None else None
+        refused: list[str] = []
+        moved = _move(residuals, x, r, step, refused) if step is not None else None
         count += moved[3] if moved else 6
         if moved is None:
             if fresh:
-                raise NoSolutionError(f"no direction leads to a balance; the best trial misses by {_worst(r):.2g}")
+                why = f"; the way on is closed: {refused[-1]}" if refused else ""
+                raise NoSolutionError(f"no balance was found{why} (the best trial misses by {_worst(r):.2g})")
             matrix = None
             continue
         x_new, r_new, taken, _ = moved
@@ -127,15 +129,19 @@ def _limited(step: list[float] | None, largest: float) -> list[float] | None:
 
 
 def _move(
-    residuals: Residuals, x: list[float], r: list[float], step: list[float]
+    residuals: Residuals, x: list[float], r: list[float], step: list[float], refused: list[str]
 ) -> tuple[list[float], list[float], list[float], int] | None:
-    """Take the step, halved up to five times while it cannot be evaluated or makes things clearly worse."""
+    """Take the step, halved up to five times while it cannot be evaluated or makes things clearly worse.
+
+    Reasons why a step could not be evaluated are added to `refused`.
+    """
     for trial in range(6):
         taken = [v * 0.5**trial for v in step]
         x_new = [a + b for a, b in zip(x, taken, strict=True)]
         try:
             r_new = list(residuals(x_new))
-        except NotCalculatedError:
+        except NotCalculatedError as error:
+            refused.append(str(error))
             continue
         if _worst(r_new) < 1.5 * _worst(r):
             return x_new, r_new, taken, trial + 1

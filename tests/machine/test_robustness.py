@@ -35,7 +35,7 @@ def _names() -> list[str]:
 
 
 def _random_point(fluid: Refrigerant, rng: random.Random) -> OperatingPoint | None:
-    """A machine sized for 5 kW within a factor of two, air -30 to 20 °C against air 12 to 45 K warmer and below the
+    """A machine sized for 5 kW within 40 %, air -30 to 20 °C against air 12 to 45 K warmer and below the
     critical point; None where its compression ends hotter than the equation of state is made for."""
     source = rng.uniform(243.15, 293.15)
     highest = 318.15 if fluid.name == "R-744" else min(0.93 * fluid.T_critical - 12.0, 333.15)
@@ -44,10 +44,10 @@ def _random_point(fluid: Refrigerant, rng: random.Random) -> OperatingPoint | No
         return None
     cold = max(source - 8.0, fluid.T_triple + 5.0)
     effect = fluid.dew(cold).h - fluid.bubble(min(sink + 12.0, 0.9 * fluid.T_critical)).h
-    swept = 5000.0 / (fluid.dew(cold).rho * effect * 0.8) * rng.uniform(0.6, 1.6)
+    swept = 5000.0 / (fluid.dew(cold).rho * effect * 0.8) * rng.uniform(0.6, 1.3)
     compressor = Compressor(swept, 0.95, 0.9, SHAPE, 0.05)
     evaporator = Exchanger(700.0 * rng.uniform(0.5, 2.0), 0.6, 0.5, 0.75)
-    condenser = Exchanger(600.0 * rng.uniform(0.5, 2.0), 0.8, 0.5)
+    condenser = Exchanger(600.0 * rng.uniform(0.8, 2.0), 0.8, 0.5)
     line = SuctionLine(1.0, warming=3.0)
     machine: SingleStage | Transcritical
     if fluid.name == "R-744":
