@@ -59,9 +59,18 @@ def read_record(path: Path, loaded: LoadedPlant) -> Record:
 
 
 def check_record(
-    path: Path, loaded: LoadedPlant, file: RecordFile, content: bytes, data: Mapping[str, Any], positions: Positions
+    path: Path,
+    loaded: LoadedPlant,
+    file: RecordFile,
+    content: bytes,
+    data: Mapping[str, Any],
+    positions: Positions,
+    *,
+    by_checklist: bool = True,
 ) -> Record:
     """The second stage: what the description and the checklist say about a record whose shape is right.
+
+    `by_checklist=False` leaves stage and answers alone: a record of old is not asked about the checklist of today.
 
     Raises:
         RecordError: with all problems of meaning.
@@ -78,7 +87,7 @@ def check_record(
     rest = {k: m for k, m in file.conditions.items() if k != BAROMETER or measured}
     conditions = reader.section("conditions", rest, CONDITION_KEYS)
     readings = reader.section("readings", file.readings, READING_KEYS)
-    items = _items(loaded, file, reader) if system is not None else {}
+    items = _items(loaded, file, reader) if system is not None and by_checklist else {}
     answers, unanswered = check_answers(reader, file.answers, file.stage, items, _files(file)) if items else ({}, ())
     _sense(file, reader)
     if reader.problems:

@@ -48,7 +48,7 @@ def recompute(loaded: LoadedPlant, filed: FiledRecord, model: SystemModel | None
     """
     read = read_yaml(filed.path, filed.path.name)
     data = {k: v for k, v in read.data.items() if k != FILED_KEY}
-    record = check_record(filed.path, loaded, filed.file, read.content, data, read.positions)
+    record = check_record(filed.path, loaded, filed.file, read.content, data, read.positions, by_checklist=False)
     judgement = judged_by(loaded, record, None, model)
     now = versions()
     tools = ", ".join(f"{name} {number}" for name, number in now.items())

@@ -138,6 +138,16 @@ def test_another_property_library_does_not_touch_the_verdict(
     assert (again.verdict, again.filed) == ("conforming", filed_test.filed)
 
 
+def test_a_changed_checklist_does_not_keep_a_record_from_being_recomputed(
+    folder: Path, loaded: LoadedPlant, write: Write, model: SystemModel
+) -> None:
+    """Stage and items of old records may be gone from today's checklist; their readings are judged all the same."""
+    filed = read_filed(file_record(loaded, write(), model=model))
+    (folder / "checklists" / "own.yaml").unlink()
+    second = recompute(load_plant(folder), filed, model)
+    assert {d.key for d in second.judgement.deviations} >= {"suction_pressure", "discharge_pressure"}
+
+
 def test_a_test_is_judged_by_the_sheet_that_was_frozen_before(
     folder: Path, loaded: LoadedPlant, write: Write, test_text: str, model: SystemModel
 ) -> None:
