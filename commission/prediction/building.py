@@ -240,12 +240,13 @@ def gas_cooler_pressure(facts: Facts, a: Mapping[str, float]) -> GasCoolerPressu
         NotCalculatedError: the pressure is left to the charge alone, or a fixed set point is not stated.
     """
     control = facts.system.controls.gas_cooler_pressure
-    hot_water = facts.system.duty == "water_heating" and facts.sink_liquid is not None
-    least = hot_water and (control is None or (control.lowest is None and control.set_point is None))
-    lowest = a["hot_water_pressure"] * facts.fluid.p_critical if least else 0.0
+    least = facts.system.duty == "water_heating" and facts.sink_liquid is not None and not lifts(facts)
+    if control is not None and (control.lowest is not None or control.set_point is not None):
+        least = False
+    hot_water = a["hot_water_pressure"] * facts.fluid.p_critical if least else 0.0
     follows: PressureBy = "follows the gas-cooler outlet"
     if control is None:
-        return GasCoolerPressure(follows, factor=1 + a["gas_cooler_pressure_departure"], lowest=lowest)
+        return GasCoolerPressure(follows, factor=1 + a["gas_cooler_pressure_departure"], hot_water=hot_water)
     if control.by == "charge alone":
         raise NotCalculatedError(
             "the high pressure is left to the charge alone, which this model does not carry for carbon dioxide: state "
@@ -261,11 +262,13 @@ def gas_cooler_pressure(facts: Facts, a: Mapping[str, float]) -> GasCoolerPressu
         control.by,
         kept(control.set_point, 0.0) or None,
         factor=1 + a["gas_cooler_pressure_departure"] if control.set_point is None else 1.0,
-        lowest=kept(control.lowest, lowest),
+        lowest=kept(control.lowest, 0.0),
         highest=kept(control.highest, HIGHEST),
+        hot_water=hot_water,
     )
 
 
+SINK_ENDS = ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature")
 HIGHEST = 1.4e7
 """Highest pressure in Pa of a transcritical circuit where none is stated: that of the components in use."""
 
@@ -304,6 +307,15 @@ def media(facts: Facts, plan: Plan, conditions: Mapping[str, float]) -> Media:
 
 ONCE_THROUGH = 12.0
 """Temperature change in K from which a water heater is taken to set its flow for the outlet temperature."""
+
+
+def lifts(facts: Facts) -> bool:
+    """Whether the rated points are those of a machine that heats hot water in one pass."""
+    temperatures = [
+        {k: getattr(point, k) for k in SINK_ENDS if getattr(point, k) is not None}
+        for point in facts.system.rated_points
+    ]
+    return bool(temperatures) and all(once_through(facts, t) for t in temperatures)
 
 
 def once_through(facts: Facts, conditions: Mapping[str, float]) -> bool:

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 from commission.description import Assumption, LoadedPlant, System
+from commission.errors import NotCalculatedError
 from commission.properties import Liquid, Refrigerant, liquid, refrigerant
 from commission.quantities import Input, Kind
 
@@ -86,3 +87,30 @@ def facts_of(loaded: LoadedPlant, identity: str) -> Facts:
     return Facts(
         loaded, identity, system, refrigerant(system.refrigerant), loaded.assumptions(identity), media[0], media[1]
     )
+
+
+def left_out(facts: Facts) -> tuple[str, ...]:
+    """What is stated but not carried by the model, so that a reader knows; nothing is left out silently.
+
+    Raises:
+        NotCalculatedError: a part that changes the circuit so much that a prediction without it would be wrong.
+    """
+    system = facts.system
+    if system.condenser.type == "evaporative":
+        raise NotCalculatedError(
+            "an evaporative condenser rejects heat by wet bulb, which this model does not carry yet"
+        )
+    notes = []
+    if system.suction_exchanger is not None:
+        notes.append(
+            "the exchanger between suction gas and liquid is not in the model: its effect is in the fitted levels"
+        )
+    if system.controls.evaporator_pressure_regulator is not None:
+        notes.append("the evaporator pressure regulator is not in the model: the values hold while it is wide open")
+    if system.compressor.stages:
+        notes.append("capacity stages are not in the model: the values hold with all stages on")
+    if system.compressor.drive == "variable speed" and system.compressor.nominal_speed is None:
+        rated = any(point.compressor_speed is not None for point in system.rated_points)
+        if not rated:
+            notes.append("the speed of the compressor is not stated: the values hold at the speed of the rated point")
+    return tuple(notes)

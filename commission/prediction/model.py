@@ -13,7 +13,7 @@ from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete
 from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
-from commission.prediction.facts import Facts, facts_of
+from commission.prediction.facts import Facts, facts_of, left_out
 from commission.prediction.fitting import SCATTER, Fit, fit_system
 from commission.prediction.rated import reference
 from commission.properties import Refrigerant
@@ -65,6 +65,7 @@ class SystemModel:
     fitted: Mapping[str, Input]
     fit: Fit
     facts: Facts
+    left_out: tuple[str, ...] = ()
 
     @property
     def rated_condition(self) -> dict[str, float]:
@@ -220,18 +221,13 @@ class SystemModel:
             raise self._nearest(whole, error) from error
         starts.nominal = point
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
-        directions = 0
         for cause, change, _ in self._changes(whole, filled, nominal, point, starts):
-            name = cause
-            if cause == SCATTER:
-                directions += 1
-                name = cause if directions == 1 else f"{cause} ({directions})"
             for key, amount in change.items():
                 if amount != 0.0:
-                    parts[key][name] = amount
+                    _add_part(parts[key], cause, amount)
         self._own_parts(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
-        warnings = [*outside, *point.warnings]
+        warnings = [*outside, *point.warnings, *self.left_out]
         if frosts(self.facts, point):
             warnings.append(
                 "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
@@ -258,10 +254,17 @@ class SystemModel:
         if self.fit.scatter > 0:
             for key in RATED_FIGURES:
                 if key in nominal.values:
-                    parts[key][f"{SCATTER} about the fit"] = self.fit.scatter * nominal.values[key]
+                    _add_part(parts[key], SCATTER, self.fit.scatter * nominal.values[key])
             for key in ("cooling_cop", "heating_cop"):
                 if key in nominal.values:
-                    parts[key][f"{SCATTER} about the fit"] = math.sqrt(2) * self.fit.scatter * nominal.values[key]
+                    _add_part(parts[key], SCATTER, math.sqrt(2) * self.fit.scatter * nominal.values[key])
+
+
+def _add_part(parts: dict[str, float], cause: str, amount: float) -> None:
+    """Add a contribution; several independent ones of one cause (the scatter moves the fit in several directions) are
+    put together as their root sum of squares, with the sign of the first."""
+    first = parts.get(cause)
+    parts[cause] = amount if first is None else math.copysign(math.hypot(first, amount), first)
 
 
 NOMINAL_STEP = {
@@ -281,6 +284,7 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
         NotCalculatedError: too little is stated, or what is stated cannot be; the message says which.
     """
     facts = facts_of(loaded, system_id)
+    notes = left_out(facts)
     found = fit_system(facts)
     case = found.cases[reference(found.cases)]
     plan = found.plan
@@ -295,6 +299,7 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
         fitted=_fitted(facts, found),
         fit=found,
         facts=facts,
+        left_out=notes,
     )
 
 

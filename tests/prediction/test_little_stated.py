@@ -156,3 +156,11 @@ def test_capacity_heat_and_power_together_leave_one_degree_of_freedom(written: W
     expected = model.predict().expected
     assert expected["heating_capacity"].value == pytest.approx(8000, rel=0.02)
     assert 0 < (expected["heating_capacity"].uncertainty or 0) < 300
+
+
+def test_nothing_stated_is_left_out_silently(written: Written) -> None:
+    """A stated part that the model does not carry is named with every prediction, or refused with the reason."""
+    text = CHILLER.replace("{type: screw}", "{type: screw, stages: [50 %, 100 %]}")
+    assert any("stages" in w for w in fit(written(text), "it").predict().warnings)
+    with pytest.raises(NotCalculatedError, match="wet bulb"):
+        fit(written(CHILLER + "condenser: {type: evaporative}\n"), "it")
