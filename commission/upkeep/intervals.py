@@ -10,7 +10,7 @@ from typing import Literal
 
 UnitOfTime = Literal["day", "week", "month", "year"]
 ALLOWED = "a whole number of days, weeks, months or years, such as 6 months"
-_WRITTEN = re.compile(r"([1-9]\d{0,3})\s*(day|week|month|year)s?", re.IGNORECASE)
+_WRITTEN = re.compile(r"([1-9][0-9]{0,3})\s*(day|week|month|year)s?", re.IGNORECASE)
 _MOST = {"day": 9999, "week": 5200, "month": 1200, "year": 100}
 
 

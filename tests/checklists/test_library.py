@@ -163,7 +163,7 @@ def test_a_flammable_refrigerant_changes_the_order(cold_room: tuple[Stage, ...],
 
 
 def test_the_cold_room_has_the_right_size(cold_room: tuple[Stage, ...]) -> None:
-    """A small cold room with a flammable refrigerant takes 40 to 60 items until it is handed over and seen once more."""
+    """A small cold room with a flammable refrigerant takes 40 to 60 items, upkeep apart."""
     assert 40 <= len(order(commissioning(cold_room))) <= 60
 
 
