@@ -129,6 +129,7 @@ def test_a_visit_that_is_filed_moves_the_day(site: Site, tmp_path: Path) -> None
 
 def test_importing_the_room_is_light() -> None:
     """The calendar library, CoolProp and matplotlib are imported where they are used, not at the start."""
-    code = "import commission.upkeep, sys; print(sorted({'icalendar', 'CoolProp', 'matplotlib', 'scipy'} & set(sys.modules)))"
+    heavy = {"icalendar", "CoolProp", "matplotlib", "scipy"}
+    code = f"import commission.upkeep, sys; print(sorted({heavy} & set(sys.modules)))"
     run = subprocess.run([sys.executable, "-c", code], capture_output=True, check=True, encoding="utf-8")
     assert run.stdout.strip() == "[]"

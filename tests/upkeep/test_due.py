@@ -81,7 +81,7 @@ def test_readings_or_installation_stand_in_for_the_first_start(site: Site) -> No
 def test_hand_over_is_the_first_filed_acceptance(
     site: Site, records: list[tuple[str, str, str]], day: str, words: str
 ) -> None:
-    """Its own record, else the first accepted test, else the first test; ten months later the last free visit is due."""
+    """Its own record, else the first accepted test, else the first test; ten months later the last free visit."""
     for started, stage, verdict in records:
         mode = "trim" if stage == "handover" else "test"
         site.file(started, stage, mode=mode, verdict=verdict)
@@ -327,9 +327,10 @@ def test_what_cannot_be_used_is_refused_with_its_line(site: Site, text: str, lin
     assert words in f"{problem.message} {problem.path}"
 
 
-@pytest.mark.parametrize(
-    "text", ["", "0 days", "-1 month", "1.5 years", "6", "months", "6 fortnights", "101 years", "１２ months "]
-)
+NO_INTERVALS = ["", "0 days", "-1 month", "1.5 years", "6", "months", "6 fortnights", "101 years", "1２ months"]
+
+
+@pytest.mark.parametrize("text", NO_INTERVALS)
 def test_what_is_no_interval_is_refused(text: str) -> None:
     """Whole numbers of days, weeks, months or years, and nothing else."""
     with pytest.raises(ValueError, match="a whole number of days"):
@@ -337,9 +338,9 @@ def test_what_is_no_interval_is_refused(text: str) -> None:
 
 
 def test_an_empty_file_changes_nothing(site: Site) -> None:
-    """An upkeep.yaml with nothing in it is like none."""
+    """An upkeep.yaml that says nothing is like none."""
     before = due(site.loaded)
-    site.own("# nothing yet\n")
+    site.own("duties: []\n")
     assert due(site.loaded) == before
 
 
