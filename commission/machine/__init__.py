@@ -3,7 +3,13 @@
 from commission.machine.circuit import Parts, SuctionLine
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
-from commission.machine.gas_cooler import GasCoolerPressure, PressureBy, best_pressure, liao_best_pressure
+from commission.machine.gas_cooler import (
+    GasCoolerPressure,
+    PressureBy,
+    best_pressure,
+    liao_best_pressure,
+    lifting_best_pressure,
+)
 from commission.machine.head_pressure import HeadPressure
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
@@ -49,6 +55,7 @@ __all__ = [
     "in_fahrenheit",
     "leaving_air",
     "liao_best_pressure",
+    "lifting_best_pressure",
     "liquid_stream",
     "solve",
     "ten_coefficients",

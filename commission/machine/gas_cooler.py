@@ -26,8 +26,9 @@ PressureBy = Literal["fixed set point", "follows the gas-cooler outlet"]
 class GasCoolerPressure:
     """How the high pressure is set: to a fixed `set_point` (Pa), or by the gas-cooler outlet temperature.
 
-    The control that follows the outlet keeps to the published pressure of best COP, times `factor`, between `lowest`
-    and `highest` (Pa); below the critical point the circuit condenses with `subcooling` (K).
+    The control that follows the outlet keeps to the pressure of best COP, times `factor`, between `lowest` and
+    `highest` (Pa); below the critical point the circuit condenses with `subcooling` (K). `hot_water` (Pa) is the least
+    pressure of a water heater whose pump keeps its flow.
     """
 
     by: PressureBy
@@ -35,6 +36,7 @@ class GasCoolerPressure:
     factor: float = 1.0
     lowest: float = 0.0
     highest: float = 1.4e7
+    hot_water: float = 0.0
     subcooling: float = 2.0
 
 
@@ -57,13 +59,32 @@ def subcritical_pressure(refrigerant: Refrigerant, temperature: float) -> float:
     return p * math.exp(slope * (1 / top - 1 / temperature))
 
 
-def high_pressure(control: GasCoolerPressure, refrigerant: Refrigerant, outlet: float, evaporating: float) -> float:
-    """Pressure in Pa at the gas-cooler outlet temperature (K): the smooth greater of condensing and controlled one."""
+def lifting_best_pressure(evaporating: float, inlet: float, outlet: float) -> float:
+    """Pressure of best COP in Pa where water is heated in one pass from `inlet` to `outlet`, at `evaporating` (K).
+
+    Here the water's lift sets it, not the gas-cooler outlet alone: below it the temperatures meet inside the exchanger.
+    Plane through 135 best pressures calculated with this model (water from 8 to 35 °C to 50 to 70 °C, air -12 to 26 °C,
+    gas coolers of 2 to 7 K approach); it misses them by 1.6 bar (standard deviation) for one gas cooler, and lies 4 bar
+    low for the smallest and high for the largest.
+    """
+    te, cold, hot = evaporating - 273.15, inlet - 273.15, outlet - 273.15
+    return 1e5 * (32.0 + 0.46 * te + 0.44 * cold + 0.94 * hot)
+
+
+def high_pressure(
+    control: GasCoolerPressure, refrigerant: Refrigerant, outlet: float, evaporating: float, sink: Stream | None = None
+) -> float:
+    """Pressure in Pa at the gas-cooler outlet temperature (K): the smooth greater of condensing and controlled one.
+
+    `sink` counts where it is water that is heated in one pass.
+    """
     condensing = subcritical_pressure(refrigerant, outlet + control.subcooling)
     if control.by == "fixed set point" and control.set_point is not None:
         wanted = control.set_point
+    elif sink is not None and sink.outlet_wanted is not None:
+        wanted = control.factor * lifting_best_pressure(evaporating, sink.temperature, sink.outlet_wanted)
     else:
-        wanted = control.factor * liao_best_pressure(outlet, evaporating)
+        wanted = max(control.factor * liao_best_pressure(outlet, evaporating), control.hot_water)
     wanted = min(max(wanted, control.lowest), control.highest)
     return 0.5 * (condensing + wanted + math.hypot(condensing - wanted, WIDTH))
 

@@ -83,20 +83,12 @@ class GasCoolerCircuit(Circuit):
 
     def __init__(self, machine: Transcritical, media: Media) -> None:
         super().__init__(machine, media)
-        self._cycles: dict[tuple[float, float], tuple[Compression, float, float]] = {}
         self._high: dict[tuple[float, float], tuple[float, State]] = {}
-
-    def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
-        """As of any circuit, kept: both residuals ask for it."""
-        key = evaporating, second
-        if key not in self._cycles:
-            self._cycles[key] = super().cycle(evaporating, second)
-        return self._cycles[key]
 
     def pressure(self, evaporating: float, outlet: float) -> float:
         """High pressure in Pa."""
         m = self.machine
-        return high_pressure(m.pressure, m.refrigerant, outlet, evaporating)
+        return high_pressure(m.pressure, m.refrigerant, outlet, evaporating, self.media.sink)
 
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
         """Pressure at the discharge port and state at the gas-cooler outlet."""
