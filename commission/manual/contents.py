@@ -29,7 +29,7 @@ from commission.manual.records_pages import (
 from commission.manual.saturation import saturation_page
 from commission.manual.states import Standing
 from commission.manual.store import Store
-from commission.manual.test_pages import before_the_visit, test_sheets
+from commission.manual.proof_pages import before_the_visit, test_sheets
 
 if TYPE_CHECKING:
     from commission.review import Finding

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
 from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
+from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
-from commission.manual.showing import label_of, unit_of
+from commission.manual.showing import label_of, size_text, unit_of
 from commission.manual.system_pages import Cell, conditions_line, grid_cell
 from commission.quantities import NOMENCLATURE, Display, Kind
 
@@ -74,7 +76,22 @@ def instrument_words(plant: PlantData, data: SystemData, key: str, value: float 
     except NotCalculatedError:
         return name
     kind = NOMENCLATURE[key].kind
-    return f"{name} ± {plant.display.spread(budget.expanded(), kind)} {plant.display.spread_unit(kind)}".strip()
+    return f"{name} ± {size_text(plant.display, kind, budget.expanded())}"
+
+
+def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float]) -> list[tuple[str, str, str]]:
+    """The instruments that will read these quantities, with serial and end of calibration; all where none fits."""
+    from commission.acceptance.choosing import choose_instrument
+
+    instruments = plant.loaded.plant.instruments
+    names = {
+        choose_instrument(k, v, instruments, data.system.measured_with, plant.loaded.barometric_pressure)
+        for k, v in wanted.items()
+    }
+    chosen = {n: i for n, i in instruments.items() if n in names} or instruments
+    return [
+        (n, i.serial or "", i.calibrated_until.isoformat() if i.calibrated_until else "") for n, i in chosen.items()
+    ]
 
 
 def _rows(
@@ -101,12 +118,13 @@ def _rows(
 def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetTable, ...]:
     """The grid in tables that fit on a page."""
     display = plant.display
-    n = len(grid.points)
+    shown = grid.shown
+    n = len(shown)
     count = -(-n // _MOST_COLUMNS)
     size = -(-n // count) if count else 0
     tables = []
     for start in range(0, n, size or 1):
-        points = grid.points[start : start + size]
+        points = shown[start : start + size]
         heads = tuple(display.number(p.temperature, Kind.TEMPERATURE, 0) for p in points)
         tables.append(SheetTable(heads, _rows(plant, data, READ, points), _rows(plant, data, WORKED_OUT, points)))
     return tuple(tables)
@@ -138,11 +156,19 @@ def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
         {
             "label": label_of(k),
             "unit": unit_of(display, NOMENCLATURE[k].kind),
-            "rated": display.number(rated[k], NOMENCLATURE[k].kind) if k in rated else "",
+            "rated": stated_number(display, rated[k], NOMENCLATURE[k].kind) if k in rated else "",
             "instrument": instrument_words(plant, data, k, rated.get(k)),
         }
         for k in keys
     ]
+
+
+def _wanted(data: SystemData) -> dict[str, float]:
+    """What will be read, at its rated value in SI."""
+    if data.rated is None:
+        return {}
+    read = {k: data.rated.expected[k].value for k in READ if k in data.rated.expected}
+    return {**data.rated.conditions, **read}
 
 
 def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
@@ -164,10 +190,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),
         "fixed": conditions_line(plant, data, grid.fixed) if grid else "",
-        "instruments": [
-            (name, i.serial or "", i.calibrated_until.isoformat() if i.calibrated_until else "")
-            for name, i in plant.loaded.plant.instruments.items()
-        ],
+        "instruments": _used(plant, data, _wanted(data)),
         "saturation": data.page("saturation-table"),
     }
     return Sheet(data.page("day-sheet"), "Day sheet", data.group, "day_sheet.html", context, data.kicker, paper=True)

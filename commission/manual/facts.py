@@ -92,6 +92,8 @@ def stated_number(display: Display, value: float, kind: Kind) -> str:
         return f"{value / 3600.0:g} h"
     shown = display.convert(value, kind)
     unit, digits = display.unit_and_digits(kind)
+    if kind is Kind.TEMPERATURE:
+        return display.text(value, kind)
     while digits < 4 and abs(round(shown, digits) - shown) > 0.005 * abs(shown):
         digits += 1
     return f"{display.number(value, kind, digits)} {pretty(unit)}".strip()
@@ -121,7 +123,9 @@ class _Walker:
             yield from self.facts(value, path, label)
         elif isinstance(value, tuple) and isinstance(value[0], BaseModel):
             for n, one in enumerate(value):
-                yield from self.value(one, info, (*path, n), f"{label} {n + 1}")
+                inside = tuple(self.facts(one, (*path, n)))
+                text = ", ".join(f"{f.label.lower()} {f.text}" for f in inside)
+                yield Fact(f"{label.removesuffix('s')} {n + 1}", text, str(self.loaded.where((*self.base, *path, n))))
         elif isinstance(value, Mapping):
             for name, one in value.items():
                 yield from self.value(one, info, (*path, name), f"{label} {name}")
@@ -162,7 +166,7 @@ def system_facts(loaded: LoadedPlant, identity: str, display: Display) -> tuple[
             continue
         value = getattr(system, name)
         if isinstance(value, BaseModel) and name != "spaces":
-            facts = tuple(f for f in walker.facts(value, (name,)) if not f.label.startswith("Rated points"))
+            facts = tuple(f for f in walker.facts(value, (name,)) if not f.label.startswith("Rated point"))
             if facts:
                 groups.append(FactGroup(words_of(name), facts))
         else:

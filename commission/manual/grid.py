@@ -43,6 +43,21 @@ class Grid:
     points: tuple[GridPoint, ...]
     line: tuple[GridPoint, ...]
 
+    @property
+    def shown(self) -> tuple[GridPoint, ...]:
+        """The points from the first to the last that could be calculated."""
+        good = [n for n, p in enumerate(self.points) if p.prediction is not None]
+        return self.points[good[0] : good[-1] + 1] if good else ()
+
+    @property
+    def reasons(self) -> Mapping[str, tuple[float, ...]]:
+        """Why some points could not be calculated, with their temperatures in K."""
+        found: dict[str, tuple[float, ...]] = {}
+        for point in self.points:
+            if point.because is not None:
+                found[point.because] = (*found.get(point.because, ()), point.temperature)
+        return found
+
 
 def outdoor_axis(loaded: LoadedPlant, system: System) -> tuple[str, str]:
     """The condition that follows the weather, and its name: the side that is outdoors, else the heat sink."""

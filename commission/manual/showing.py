@@ -105,6 +105,14 @@ def spread_text(display: Display, kind: Kind, value: float) -> str:
     return f"{sign}{text} {display.spread_unit(kind)}".rstrip()
 
 
+def size_text(display: Display, kind: Kind, value: float) -> str:
+    """The size of an uncertainty with its unit, with as many digits as it takes to show something."""
+    digits = display.unit_and_digits(kind)[1]
+    while digits < 4 and value > 0 and float(display.spread(value, kind, digits)) == 0:
+        digits += 1
+    return f"{display.spread(value, kind, digits)} {display.spread_unit(kind)}".strip()
+
+
 def show_input(item: Input, display: Display) -> ShownInput:
     """One input with its unit and origin."""
     match = _ASSUMPTION.match(item.origin)
@@ -181,7 +189,8 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
         "At the gauges and probes",
         (
             "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature",
-            "liquid_temperature", "heat_source_outlet_temperature", "heat_sink_outlet_temperature",
+            "liquid_temperature", "heat_source_inlet_temperature", "heat_source_outlet_temperature",
+            "heat_sink_inlet_temperature", "heat_sink_outlet_temperature",
         ),
     ),
     (

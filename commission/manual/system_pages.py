@@ -10,7 +10,7 @@ from typing import Any
 from commission.manual.assumed import ShownAssumption, shown_assumptions
 from commission.manual.book import Sheet
 from commission.manual.documents import DocumentLink
-from commission.manual.facts import guarantees, rated_points, system_facts
+from commission.manual.facts import guarantees, rated_points, stated_number, system_facts
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
 from commission.manual.plots import Figure
@@ -69,7 +69,7 @@ def conditions_words(
     lines = []
     for side, words in (("heat_source", "Heat source"), ("heat_sink", "Heat sink")):
         values = [
-            form.format(display.of(f"{side}_{part}", conditions[f"{side}_{part}"]))
+            form.format(stated_number(display, conditions[f"{side}_{part}"], NOMENCLATURE[f"{side}_{part}"].kind))
             for part, form in _PARTS
             if f"{side}_{part}" in conditions
         ]
@@ -163,9 +163,18 @@ def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | No
     return GridTable(
         grid.title,
         unit_of(display, Kind.TEMPERATURE),
-        tuple(_head(p, display) for p in grid.points),
-        tuple(_grid_row(data, k, grid.points, good, display) for k in keys),
-        tuple((_head(p, display), p.because) for p in grid.points if p.because is not None),
+        tuple(_head(p, display) for p in grid.shown),
+        tuple(_grid_row(data, k, grid.shown, good, display) for k in keys),
+        reasons_in_words(grid, display),
+    )
+
+
+def reasons_in_words(grid: Grid, display: Display) -> tuple[tuple[str, str], ...]:
+    """At which temperatures nothing could be calculated, and why."""
+    unit = unit_of(display, Kind.TEMPERATURE)
+    return tuple(
+        (", ".join(display.number(t, Kind.TEMPERATURE, 0) for t in temperatures) + f" {unit}", because)
+        for because, temperatures in grid.reasons.items()
     )
 
 

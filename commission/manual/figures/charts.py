@@ -51,7 +51,7 @@ def draw_chart(chart: Chart) -> bytes:
     """The chart as SVG bytes. Names stand at the ends of the lines, so that no colour has to be matched."""
     with our_style():
         figure, axes = new_figure(*chart.inches)
-        figure.subplots_adjust(left=0.115, right=0.70, top=0.90, bottom=0.165)
+        figure.subplots_adjust(left=0.115, right=0.70, top=0.85, bottom=0.165)
         ends = []
         for colour, style, line in zip(COLOURS, ("-", "-", "--"), chart.lines, strict=False):
             y = [_number(v) for v in line.values]
@@ -71,12 +71,12 @@ def draw_chart(chart: Chart) -> bytes:
         axes.set_axisbelow(True)
         if chart.rated_x is not None and chart.x[0] <= chart.rated_x <= chart.x[-1]:
             axes.axvline(chart.rated_x, color=INK, linewidth=0.9, linestyle=(0, (2, 3)))
-            axes.annotate("rated", (chart.rated_x, 1.0), (-4, 2), xycoords=("data", "axes fraction"),
-                          textcoords="offset points", ha="right", va="bottom", fontsize=10.5)  # fmt: skip
+            axes.annotate("rated", (chart.rated_x, 1.0), (0, 3), xycoords=("data", "axes fraction"),
+                          textcoords="offset points", ha="center", va="bottom", fontsize=10.5)  # fmt: skip
         heights = _label_heights(ends, *axes.get_ylim())
         for colour, line, height in zip(COLOURS, chart.lines, heights, strict=False):
             axes.annotate(line.name, (1.0, height), (7, 0), xycoords=("axes fraction", "data"),
                           textcoords="offset points", va="center", color=colour, fontsize=11)  # fmt: skip
         axes.set_xlabel(chart.x_label)
-        axes.set_title(chart.y_label, loc="left", fontsize=11.5, pad=8)
+        axes.set_title(chart.y_label, loc="left", fontsize=11.5, pad=20)
         return to_svg(figure, chart.title)

@@ -12,7 +12,7 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-STYLE_VERSION = 3
+STYLE_VERSION = 4
 """Part of the key of every kept figure: raise it when the look changes."""
 
 INK, SOFT, LINE = "#17211f", "#495653", "#c9d2ce"

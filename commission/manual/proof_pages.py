@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError, NotCalculatedError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.showing import COVERAGE, How, band_text, label_of, show_how, unit_of
+from commission.manual.showing import COVERAGE, How, band_text, label_of, show_how, size_text, unit_of
 from commission.manual.system_pages import conditions_words
 from commission.quantities import NOMENCLATURE, Display, Kind
 
@@ -42,7 +42,7 @@ def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow
         label_of(r.key),
         display.text(r.expected.value, kind),
         r.instrument or "from the readings above",
-        f"{display.spread(r.detectable, kind)} {display.spread_unit(kind)}".strip(),
+        size_text(display, kind, r.detectable),
         show_how(r.expected, display, data.assumptions),
     )
 
