@@ -47,6 +47,14 @@ def _unit(name: str, kind: Kind) -> Unit:
     return unit
 
 
+def _places(usual: int, kind: Kind, shown: float) -> int:
+    """Digits behind the point: a volume flow runs from a litre of water a minute to air by the thousand m3/h, and keeps
+    three figures."""
+    if kind is not Kind.VOLUME_FLOW:
+        return usual
+    return next((places for least, places in ((100.0, 0), (10.0, 1), (1.0, 2)) if abs(shown) >= least), 3)
+
+
 @dataclass(frozen=True, slots=True)
 class Display:
     """Shows SI values to a person at one site.
@@ -74,8 +82,9 @@ class Display:
 
     def number(self, value: float, kind: Kind, digits: int | None = None) -> str:
         """The number alone, in the unit shown, with a true minus sign and no negative zero."""
-        places = self.unit_and_digits(kind)[1] if digits is None else digits
-        text = f"{self.convert(value, kind):.{places}f}"
+        shown = self.convert(value, kind)
+        places = _places(self.unit_and_digits(kind)[1], kind, shown) if digits is None else digits
+        text = f"{shown:.{places}f}"
         if float(text) == 0:
             text = text.lstrip("-")
         return text.replace("-", "−")
@@ -87,8 +96,8 @@ class Display:
 
     def spread(self, value: float, kind: Kind, digits: int | None = None) -> str:
         """The size of an uncertainty or deviation of this kind, number alone: an offset never applies."""
-        places = self.unit_and_digits(kind)[1] if digits is None else digits
         factor = 1.0 if kind is Kind.NUMBER else _unit(self.unit_and_digits(kind)[0], kind).factor
+        places = _places(self.unit_and_digits(kind)[1], kind, 10 * value / factor) if digits is None else digits
         text = f"{value / factor:.{places}f}"
         if float(text) == 0:
             text = text.lstrip("-")

@@ -78,3 +78,12 @@ def test_every_quantity_of_the_nomenclature_says_what_it_means() -> None:
         assert quantity.label[0].isupper()
         assert len(quantity.definition) > 10
         assert Display("metric", BAROMETER).of(key, 300.0)
+
+
+def test_a_small_volume_flow_keeps_its_figures() -> None:
+    """Water at 127 L/h is not shown as 0 m³/h, nor its uncertainty; air by the thousand keeps whole numbers."""
+    display = Display("metric", 101325.0)
+    assert display.text(127e-3 / 3600, Kind.VOLUME_FLOW) == "0.127 m³/h"
+    assert display.spread(3e-3 / 3600, Kind.VOLUME_FLOW) == "0.003"
+    assert display.text(4200 / 3600, Kind.VOLUME_FLOW) == "4200 m³/h"
+    assert display.spread(40 / 3600, Kind.VOLUME_FLOW) == "40"
