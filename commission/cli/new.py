@@ -11,8 +11,8 @@ from commission.cli.options import say
 DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", "water_heating")
 
 
-@click.command(name="new")
-@click.argument("folder", type=click.Path(path_type=Path))
+@click.command(name="new", short_help="Write a first description to work on.")
+@click.argument("folder", metavar="DIR", type=click.Path(path_type=Path))
 @click.option("--duty", type=click.Choice(DUTIES), help="What the system does.")
 @click.option(
     "--from-schedule",
@@ -21,7 +21,7 @@ DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", 
     help="An equipment schedule as CSV, one row per system, instead of --duty.",
 )
 def command(folder: Path, duty: str | None, schedule: Path | None) -> None:
-    """Write a first description into FOLDER, commented, valid as written, never overwriting a file."""
+    """Write a first description into DIR, commented, valid as written, never overwriting a file."""
     from commission.errors import InputError, Problem
 
     if (duty is None) == (schedule is None):

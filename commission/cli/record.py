@@ -10,7 +10,7 @@ from commission.cli.options import check_system, plant_argument, say
 from commission.errors import InputError, Problem
 
 
-@click.command(name="record")
+@click.command(name="record", short_help="File a visit for good, its verdict frozen.")
 @plant_argument
 @click.argument("file", type=click.Path(path_type=Path), required=False)
 @click.option("--attach", type=click.Path(path_type=Path), help="Folder with the files that the record names.")
