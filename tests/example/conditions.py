@@ -38,6 +38,13 @@ CONDITIONS: Mapping[str, tuple[Values, ...]] = {
         {"heat_source_relative_humidity": 0.98},
         {"heat_sink_flow": 1.2 / 3600, "heat_sink_outlet_temperature": 42 + C},
     ),
+    "shower-water": (
+        {},
+        {"heat_source_inlet_temperature": -9 + C},
+        {"heat_source_inlet_temperature": 20 + C, "heat_source_relative_humidity": 0.6},
+        {"heat_sink_inlet_temperature": 35 + C},
+        {"heat_source_inlet_temperature": 2 + C, "heat_sink_outlet_temperature": 65 + C},
+    ),
 }
 """The rated condition and at least three others of each system, with what matters to it."""
 

@@ -32,13 +32,13 @@ def test_energy_is_kept(predicted: Predicted, system: str, number: int) -> None:
 
 @pytest.mark.parametrize(("system", "number"), EVERYWHERE)
 def test_the_sink_takes_up_the_heat(predicted: Predicted, system: str, number: int) -> None:
-    """Flow times density times specific heat times temperature change of the sink, by textbook values of water
-    (995 kg/m³, 4179 J/(kg K) near 30 °C) and dry air; air flow is known only where the fan runs at full speed."""
+    """Flow times density times specific heat times temperature change of the sink, by textbook values: water 995 kg/m³
+    and 4179 J/(kg K), within 1 % from 10 to 65 °C; dry air, whose flow is known only where the fan runs at full speed."""
     found = predicted(system, number)
     v = values(found)
     change = v["heat_sink_outlet_temperature"] - v["heat_sink_inlet_temperature"]
-    if system == "floor-heating":
-        assert v["heating_capacity"] == pytest.approx(v["heat_sink_flow"] * 995.0 * 4179.0 * change, rel=0.005)
+    if system in ("floor-heating", "shower-water"):
+        assert v["heating_capacity"] == pytest.approx(v["heat_sink_flow"] * 995.0 * 4179.0 * change, rel=0.01)
     elif "head pressure held" not in found.regime:
         density = 97656.0 / (R_AIR * v["heat_sink_inlet_temperature"])
         assert v["heating_capacity"] == pytest.approx(v["heat_sink_flow"] * density * CP_AIR * change, rel=0.03)
@@ -70,14 +70,14 @@ def test_entropy_rises_and_heat_flows_downhill(predicted: Predicted, system: str
     assert states["7"].s > states["6"].s
     assert states["7"].h == pytest.approx(states["6"].h, abs=1.0)
     assert v["heat_source_inlet_temperature"] > states["1"].T
-    assert v["evaporating_temperature"] < v["heat_source_outlet_temperature"]
+    assert v["heat_source_outlet_temperature"] > v["evaporating_temperature"]
     assert v["heat_sink_inlet_temperature"] < states["6"].T
     assert v["discharge_temperature"] > v["heat_sink_outlet_temperature"]
 
 
 def test_every_system_is_calculated_without_a_warning_at_its_design(predicted: Predicted) -> None:
-    """Nothing is left out at the design condition; only the frost of an outdoor coil is mentioned."""
+    """Nothing is left out at the design condition but what a gas cooler has not; only frost of a coil is mentioned."""
     for system in dict.fromkeys(name for name, _ in EVERYWHERE):
         found = predicted(system, 0)
-        assert not found.not_calculated, system
+        assert all("critical point" in reason for reason in found.not_calculated.values()), system
         assert all("frost" in text for text in found.warnings), system

@@ -36,6 +36,11 @@ TRENDS = [
      {"discharge_pressure": 1, "discharge_temperature": 1, "power_input": 1, "heating_cop": -1}),
     ("floor-heating", "compressor_speed", (30.0, 50.0, 70.0),
      {"heating_capacity": 1, "power_input": 1, "suction_pressure": -1, "heat_sink_temperature_change": 1}),
+    ("shower-water", "heat_source_inlet_temperature", (-9 + C, 5 + C, 19 + C),
+     {"suction_pressure": 1, "heating_capacity": 1, "heating_cop": 1, "discharge_temperature": -1,
+      "heat_sink_flow": 1}),
+    ("shower-water", "heat_sink_inlet_temperature", (10 + C, 25 + C, 40 + C),
+     {"heating_capacity": -1, "heating_cop": -1, "gas_cooler_outlet_temperature": 1, "heat_sink_flow": 1}),
 ]  # fmt: skip
 
 
