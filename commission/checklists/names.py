@@ -64,6 +64,7 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.system": ("text", "name of the system", ()),
         "words.evaporator_space": ("text", "name of the space of the evaporator", ()),
         "words.condensing_space": ("text", "name of the space of the condensing unit", ()),
+        "words.indoor_spaces": ("text", "names of the indoor spaces that hold a part of the circuit", ()),
         "words.condition": ("text", "condition of the list in words", ()),
         "words.instruments": ("text", "instruments of this system with serial and calibration", ()),
         "words.test_steps": ("text", "steps of the pressure test, whole circuit joined", ()),

@@ -81,6 +81,15 @@ def _antifreeze(medium: Medium) -> bool:
     return medium.medium in GLYCOL
 
 
+def _indoor_spaces(facts: Facts) -> str | None:
+    """Every indoor space that holds a part of the circuit, as it stands on the door."""
+    named = facts.loaded.plant.spaces
+    places = facts.system.spaces
+    held = [facts.space_id("evaporator"), facts.space_id("condensing_unit"), *places.pipework]
+    found = [named[i].name or i for i in dict.fromkeys(held) if i in named and not named[i].outdoors]
+    return ", ".join(found) or None
+
+
 def _condition(facts: Facts) -> str | None:
     prediction = facts.predictions.get("expected")
     if prediction is None:
@@ -223,6 +232,7 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.system": lambda f, _: f.system.name or f.system_id,
         "words.evaporator_space": lambda f, _: f.space_name("evaporator"),
         "words.condensing_space": lambda f, _: f.space_name("condensing_unit"),
+        "words.indoor_spaces": lambda f, _: _indoor_spaces(f),
         "words.condition": lambda f, _: _condition(f),
         "words.instruments": lambda f, _: _instruments(f),
         "words.test_steps": lambda f, _: _steps(f),

@@ -9,10 +9,11 @@ from typing import TYPE_CHECKING
 from commission.checklists.entries import Answer
 from commission.checklists.evaluate import evaluate
 from commission.checklists.library import CheckedItem, CheckedStage, kind_of_unit, plant_library
+from commission.checklists.marks import mark_with_figures
 from commission.checklists.rendering import Target, fill, target
 from commission.checklists.words import Facts, predictions
 from commission.quantities import Display, Explained, Kind
-from commission.safety import MARKS, safety_figures, substance_of
+from commission.safety import MARKS, fluid_of, safety_figures, substance_of
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -25,8 +26,9 @@ class Item:
 
     `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown), yes/no,
     a file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated numbers in its
-    texts. `note` says why an item is shown although a fact it depends on is not known. `left_out` holds the reason
-    where the plant's own list leaves the item out. `origin` is the data file and line.
+    texts. `mark` is that of the source, or of a figure from memory in the texts where that is weaker. `note` says why
+    an item is shown although a fact it depends on is not known. `left_out` holds the reason where the plant's own list
+    leaves the item out. `origin` is the data file and line.
     """
 
     id: str
@@ -112,9 +114,8 @@ def facts_of(
 ) -> Facts:
     """Everything the checklist of one system is worked out from."""
     from commission.prediction import Prediction
-    from commission.properties import refrigerant
 
-    substance = substance_of(refrigerant(loaded.system(system_id).refrigerant))
+    substance = substance_of(fluid_of(loaded, system_id))
     found, missing = predictions(model, loaded, system_id, conditions)
     display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
     figures = safety_figures(loaded, system_id, None if isinstance(model, Prediction) else model)
@@ -158,7 +159,7 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
     if reading is not None:
         figures += reading.explained
     entry = item.entry
-    mark = entry.mark or _mark_of(entry.source)
+    mark = mark_with_figures(entry.mark or _mark_of(entry.source), item, facts)
     return Item(
         id=entry.id,
         do=texts["do"],

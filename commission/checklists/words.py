@@ -48,20 +48,21 @@ class Facts:
         law = self.loaded.plant.plant.rules.refrigerant_law
         return leak_duty(law, self.substance, self.system.charge, self.system.sealed, self.system.duty)
 
-    def space(self, part: str) -> Space | None:
-        """The space that holds a part, or that its air comes from."""
+    def space_id(self, part: str) -> str:
+        """The id of the space that holds a part, or that its air comes from; empty where none is named."""
         place = getattr(self.system.spaces, part)
         if place is None:
             place = (self.system.heat_source if part == "evaporator" else self.system.heat_sink).space
-        return self.loaded.plant.spaces.get(place or "")
+        return place or ""
+
+    def space(self, part: str) -> Space | None:
+        """That space."""
+        return self.loaded.plant.spaces.get(self.space_id(part))
 
     def space_name(self, part: str) -> str | None:
         """The name of that space as it stands on the door."""
-        place = getattr(self.system.spaces, part)
-        if place is None:
-            place = (self.system.heat_source if part == "evaporator" else self.system.heat_sink).space
-        space = self.loaded.plant.spaces.get(place or "")
-        return None if space is None else space.name or place
+        space = self.space(part)
+        return None if space is None else space.name or self.space_id(part)
 
     def lookup(self, name: str) -> Value:
         """The value of a dotted name of `names()`."""

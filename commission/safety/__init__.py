@@ -13,7 +13,7 @@ from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, 
 from commission.safety.limits import ChargeLimit
 from commission.safety.market import MarketDate, market_dates
 from commission.safety.people import Hazards, Level, hazards
-from commission.safety.register import substance_of
+from commission.safety.register import fluid_of, substance_of
 from commission.safety.relief import ReliefDuty, relief_duties
 from commission.safety.strength import strength_test_steps
 from commission.safety.substance import Substance
@@ -43,6 +43,7 @@ __all__ = [
     "emergency_card",
     "fact",
     "facts",
+    "fluid_of",
     "hazards",
     "label_text",
     "leak_duty",

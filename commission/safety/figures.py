@@ -17,11 +17,12 @@ from commission.safety.formulas import (
 )
 from commission.safety.leaks import leak_duty
 from commission.safety.limit_devices import limit_devices
-from commission.safety.register import substance_of
+from commission.safety.register import fluid_of, substance_of
 from commission.safety.strength import pressure_test_figures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
+    from commission.description.model import Space
     from commission.prediction import SystemModel
     from commission.safety.substance import Substance
 
@@ -34,10 +35,7 @@ def safety_figures(loaded: LoadedPlant, system_id: str, model: SystemModel | Non
     Raises:
         InputError: no such system or refrigerant.
     """
-    from commission.properties import refrigerant
-
-    system = loaded.system(system_id)
-    fluid = refrigerant(system.refrigerant)
+    fluid = fluid_of(loaded, system_id)
     substance = substance_of(fluid)
     out = Collector()
     pressure_test_figures(loaded, system_id, out)
@@ -122,6 +120,21 @@ def _ventilation(loaded: LoadedPlant, system_id: str, out: Collector) -> None:
         (keys[1], fact("emergency_ventilation_ashrae"), emergency_ventilation_ashrae15),
     ):
         out.add(key, formula(charges[largest]), key, inputs, rule)
+    _enough_air_changes(loaded, room or "", space, out)
+
+
+def _enough_air_changes(loaded: LoadedPlant, room: str, space: Space, out: Collector) -> None:
+    """EN 378-3 never asks for more than its number of air changes: in a small room that is less than the formula."""
+    rule = fact("emergency_air_changes")
+    if space.floor_area is None or space.height is None:
+        return
+    volume = space.floor_area * space.height
+    flow = rule.value * volume / 3600
+    if flow >= out.found["emergency_ventilation"].value:
+        return
+    place = str(loaded.where(f"spaces.{room}"))
+    inputs = (Input(rule.says, rule.value, Kind.NUMBER, rule.source), Input("room volume", volume, Kind.VOLUME, place))
+    out.add("emergency_ventilation", flow, "safety_rule_figure", inputs, rule)
 
 
 def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Collector) -> None:

@@ -9,7 +9,21 @@ from commission.safety.facts import load
 from commission.safety.substance import Known, Substance
 
 if TYPE_CHECKING:
+    from commission.description import LoadedPlant
     from commission.properties import Refrigerant
+
+
+def fluid_of(loaded: LoadedPlant, system_id: str) -> Refrigerant:
+    """The refrigerant of a system, with the figures that the plant states in place of the register's.
+
+    Raises:
+        InputError: no such system or refrigerant.
+    """
+    from commission.properties import refrigerant
+
+    fluid = refrigerant(loaded.system(system_id).refrigerant)
+    entry = loaded.register[fluid.name]
+    return fluid if entry == fluid.register else fluid.with_register(entry)
 
 
 def substance_of(fluid: Refrigerant) -> Substance:

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Literal
 
 from commission.errors import NotCalculatedError
 from commission.records import FiledRecord, history, in_force
-from commission.safety import MARKS, LeakDuty, leak_duty, substance_of
+from commission.safety import MARKS, LeakDuty, fluid_of, leak_duty, substance_of
 from commission.upkeep.counting import Day, counted_from, last_done, last_failed
 from commission.upkeep.entries import LAW, DutyEntry, Mark
 from commission.upkeep.intervals import Interval
@@ -137,11 +137,8 @@ def _of_system(loaded: LoadedPlant, identity: str, upkeep: Upkeep, records: Sequ
 
 
 def _leak_duty(loaded: LoadedPlant, identity: str) -> LeakDuty:
-    from commission.properties import refrigerant
-
     system = loaded.system(identity)
-    fluid = refrigerant(system.refrigerant)
-    substance = substance_of(fluid.with_register(loaded.register[fluid.name]))
+    substance = substance_of(fluid_of(loaded, identity))
     return leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, system.charge, system.sealed, system.duty)
 
 

@@ -8,10 +8,17 @@ from pathlib import Path
 import pytest
 
 from commission.checklists import Item, Stage, stages
+from commission.checklists.library import library
+from commission.checklists.marks import FROM_MEMORY, figure_marks, used_names
 from commission.checklists.rendering import show
+from commission.checklists.stages import facts_of
 from commission.description import LoadedPlant, load_plant
 from commission.prediction import fit
 from commission.quantities import Display, Kind
+from commission.safety import safety_figures
+from commission.safety.facts import weaker
+
+SYSTEMS = ("freezer", "split", "heat-pump", "chiller", "water-heater", "tower-chiller")
 
 
 def items(found: tuple[Stage, ...]) -> dict[str, Item]:
@@ -162,3 +169,77 @@ def test_the_library_holds_no_unfilled_braces(cold_room: tuple[Stage, ...], yard
     for item in [*items(cold_room).values(), *items(stages(yard, "chiller")).values()]:
         for text in (item.do, item.how, item.if_not, item.hazard, item.caution, item.must_read and item.must_read.text):
             assert not text or not any(sign in text for sign in ("{", "}", "[[", "]]"))
+
+
+def test_a_figure_from_memory_keeps_its_mark_in_the_item(yard: LoadedPlant) -> None:
+    """An item is no surer than the least sure figure that it shows, whatever its own source was read in."""
+    for system_id in SYSTEMS:
+        facts = facts_of(yard, system_id, None, None)
+        found = items(stages(yard, system_id))
+        for checked in (item for stage in library() for item in stage.items if item.entry.id in found):
+            for name in used_names(checked):
+                for mark in figure_marks(name, facts):
+                    shown = found[checked.entry.id].mark
+                    assert mark not in FROM_MEMORY or weaker(mark, shown) == shown, (checked.entry.id, name)
+
+
+def test_a_figure_from_memory_weakens_an_item_that_was_read(example_copy: Path) -> None:
+    """The ratio of 0.9 is from memory (EN 378-2): an item that quotes it says so though its source was read."""
+    (example_copy / "checklists").mkdir()
+    text = """stage: safety
+items:
+  - {id: safety.plain, do: Read it., source: ours, mark: V1}
+  - {id: safety.quoted, do: 'Read that it is below {figure.high_pressure_limit_highest}.', source: ours, mark: V1}
+"""
+    (example_copy / "checklists" / "ours.yaml").write_text(text, encoding="utf-8")
+    found = items(stages(load_plant(example_copy), "cold-room"))
+    assert found["safety.plain"].mark == "V1"
+    assert found["safety.quoted"].mark == "M"
+    assert found["safety.quoted"].sureness == "from memory, check the edition in force"
+
+
+def test_the_plants_own_register_figures_are_used(example_copy: Path) -> None:
+    """A flammability limit that the plant states replaces the register's in figures and items, with its source."""
+    path = example_copy / "plant.yaml"
+    before = safety_figures(load_plant(example_copy), "cold-room").found["flammable_alarm_level"]
+    own = "\nrefrigerants: {R-290: {lfl: {value: 0.030 kg/m3, source: a later edition}}}\n"
+    path.write_text(path.read_text(encoding="utf-8") + own, encoding="utf-8")
+    loaded = load_plant(example_copy)
+    after = safety_figures(loaded, "cold-room").found["flammable_alarm_level"]
+    assert before.value == pytest.approx(0.25 * 0.038)
+    assert after.value == pytest.approx(0.25 * 0.030)
+    assert any("a later edition" in given.origin for given in after.explained.inputs)
+    assert facts_of(loaded, "cold-room", None, None).lookup("fluid.lfl").content == pytest.approx(0.030)
+
+
+def test_the_strength_test_never_reads_below_its_ratio(cold_room: tuple[Stage, ...]) -> None:
+    """EN 378-2, table 3: at least 1.1 times the allowable pressure; the margin is upwards only."""
+    found = items(cold_room)["strength.hold"].must_read
+    assert found is not None
+    assert found.low == pytest.approx(found.value)
+    assert found.high is not None
+    assert found.value is not None
+    assert found.high > found.value
+
+
+def test_joints_are_looked_at_where_people_are(yard_stages: Callable[[str], tuple[Stage, ...]]) -> None:
+    """Indoors, by the name on the door; an ammonia plant in its machinery room has flanges."""
+    assert "Plant cellar" in items(yard_stages("water-heater"))["installation.joints"].do
+    assert "Dining hall" in items(yard_stages("split"))["installation.joints"].do
+    assert "installation.joints" not in items(yard_stages("chiller"))
+
+
+def test_the_store_is_full_before_its_relief_is_tried(yard_stages: Callable[[str], tuple[Stage, ...]]) -> None:
+    """A lever that is lifted on an empty store proves nothing."""
+    order = [item.id for stage in yard_stages("water-heater") for item in stage.items]
+    assert order.index("flows.store-filled") < order.index("installation.unvented")
+    assert order.index("installation.unvented") < order.index("controls.hygiene")
+    assert "flows.water-pressure" not in order
+
+
+def test_no_act_is_asked_for_twice_with_water(yard_stages: Callable[[str], tuple[Stage, ...]]) -> None:
+    """Stopping the water is the way to raise the pressure; it is one live trip, not two."""
+    found = items(yard_stages("chiller"))
+    assert "live-trips.high-pressure" in found
+    assert "live-trips.tower" not in found
+    assert "first-start.sight-glass" not in found
