@@ -66,7 +66,8 @@ class Compression:
     """What a compressor does between two states: flow kg/s, electric power W, heat lost by the shell W, enthalpy out.
 
     `isentropic_work` in J/kg; the efficiencies are those in force, levels included; the
-    volumetric one is None where the displacement is not known.
+    volumetric one is None where the displacement is not known. `isentropic_end` is the state at the end of a
+    reversible compression, to start a neighbouring one.
     """
 
     flow: float
@@ -77,6 +78,7 @@ class Compression:
     pressure_ratio: float
     volumetric_efficiency: float | None
     isentropic_efficiency: float
+    isentropic_end: State | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,9 +101,14 @@ class Compressor:
     leak: float = 0.0
 
     def compress(
-        self, refrigerant: Refrigerant, suction: State, pressure: float, speed_share: float = 1.0
+        self,
+        refrigerant: Refrigerant,
+        suction: State,
+        pressure: float,
+        speed_share: float = 1.0,
+        near: State | None = None,
     ) -> Compression:
-        """Compress from `suction` to `pressure` (Pa).
+        """Compress from `suction` to `pressure` (Pa); `near` is the isentropic end of a neighbouring compression.
 
         Raises:
             NotCalculatedError: the pressure does not rise, or the clearance gas fills the cylinder.
@@ -109,7 +116,7 @@ class Compressor:
         ratio = pressure / suction.p
         if not ratio > 1:
             raise NotCalculatedError(f"the compressor would have to work at a pressure ratio of {ratio:.2f}")
-        end = refrigerant.isentropic_end(suction, pressure)
+        end = refrigerant.isentropic_end(suction, pressure, near)
         work = end.h - suction.h
         exponent = math.log(ratio) / math.log(end.rho / suction.rho)
         volumetric = self.volumetric_level * self.shape.volumetric(ratio)
@@ -124,4 +131,4 @@ class Compressor:
         volumetric *= 1 - self.leak
         isentropic *= 1 - self.leak
         enthalpy = suction.h + (power - loss) / flow
-        return Compression(flow, power, loss, enthalpy, work, ratio, volumetric, isentropic)
+        return Compression(flow, power, loss, enthalpy, work, ratio, volumetric, isentropic, end)

@@ -72,9 +72,14 @@ class PolynomialCompressor:
     speed_loss: float = 0.0
 
     def compress(
-        self, refrigerant: Refrigerant, suction: State, pressure: float, speed_share: float = 1.0
+        self,
+        refrigerant: Refrigerant,
+        suction: State,
+        pressure: float,
+        speed_share: float = 1.0,
+        near: State | None = None,
     ) -> Compression:
-        """Compress from `suction` to `pressure` (Pa).
+        """Compress from `suction` to `pressure` (Pa); `near` is the isentropic end of a neighbouring compression.
 
         Raises:
             NotCalculatedError: the pressure does not rise, or the polynomials give no flow or power there.
@@ -94,7 +99,8 @@ class PolynomialCompressor:
             )
         flow *= (1 + SUCTION_SHARE * (suction.rho / rated.rho - 1)) * self.flow_level * speed_share
         power *= self.flow_level * speed_share / self.isentropic_level / (1 - 2 * self.speed_loss * (1 - speed_share))
-        work = refrigerant.isentropic_end(suction, pressure).h - suction.h
+        end = refrigerant.isentropic_end(suction, pressure, near)
+        work = end.h - suction.h
         loss = self.shell_loss * power
         return Compression(
             flow=flow,
@@ -105,6 +111,7 @@ class PolynomialCompressor:
             pressure_ratio=ratio,
             volumetric_efficiency=flow / (self.displacement * speed_share * suction.rho) if self.displacement else None,
             isentropic_efficiency=flow * work / power,
+            isentropic_end=end,
         )
 
     def _unit(self, temperature: float) -> float:

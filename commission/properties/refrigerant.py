@@ -184,8 +184,10 @@ class Refrigerant(Saturation):
 
     # From pressure with enthalpy or entropy
 
-    def isentropic_end(self, state: State | SaturationState, p: float) -> State:
+    def isentropic_end(self, state: State | SaturationState, p: float, near: State | None = None) -> State:
         """The state at `p` (Pa) with the entropy of `state`: vapour, gas above critical, or wet with a warning.
+
+        `near` is the end of a neighbouring compression: it saves calls and moves the result by rounding only.
 
         Raises:
             PropertyRangeError: the end lies outside the range, or in the liquid.
@@ -194,7 +196,7 @@ class Refrigerant(Saturation):
             if isinstance(state, State) and state.quality is not None:  # first dry it along the isentrope
                 state = self._vapour_or_wet(0.7 * self.p_dew_high, "s", state.s, wet=None)
             return _state(self._held(self._beyond.isentropic_end(state, p)))
-        return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region")
+        return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region", near=near)
 
     def vapour_from_enthalpy(self, p: float, h: float) -> State:
         """Vapour, or gas above critical, at `p` (Pa) with enthalpy `h` (J/kg).
@@ -260,7 +262,7 @@ class Refrigerant(Saturation):
             _at_pressure(self._bubble, T_bubble, p), _at_pressure(self._dew, T_dew, p), self._data.two_phase
         )
 
-    def _vapour_or_wet(self, p: float, name: str, value: float, wet: str | None) -> State:
+    def _vapour_or_wet(self, p: float, name: str, value: float, wet: str | None, near: State | None = None) -> State:
         """At `p` below the end of the dew line: vapour where `value` lies above the dew line, else wet if allowed."""
         if not p >= self.p_dew_low:
             raise PropertyRangeError(self.name, f"{bar(p)} is below {bar(self.p_dew_low)}, where the dew line begins")
@@ -274,6 +276,8 @@ class Refrigerant(Saturation):
                     self.name, f"{value / 1e3:.3f} {unit} is below the dew line ({at_dew / 1e3:.3f} {unit}) at {bar(p)}"
                 )
             return self._wet_at_entropy(p, value, wet)
+        if near is not None and near.quality is None and abs(p / near.p - 1) < 0.02:
+            return _state(self._held(self._equation.solve(p, name, value, near.rho * p / near.p, near.T)))
         rho = math.exp(ln_rho)
         cp = self._equation.at(rho, T_dew).cp
         T = T_dew * math.exp((value - s) / cp) if name == "s" else T_dew + (value - h) / cp

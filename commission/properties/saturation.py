@@ -56,6 +56,15 @@ class Saturation:
         """
         return self._saturation(self._bubble, T)
 
+    def dew_pressure(self, T: float) -> float:
+        """Pressure (Pa absolute) of the dew line at `T` (K): that of `dew`, without the other values.
+
+        Raises:
+            PropertyRangeError: `T` outside `T_low`..`T_high`.
+        """
+        self._need_temperature(T)
+        return math.exp(self._dew.row(T)[0])
+
     def dew_temperature(self, p: float) -> float:
         """Temperature (K) of the dew line at `p` (Pa absolute).
 

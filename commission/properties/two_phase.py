@@ -7,8 +7,8 @@ its quality, volume and entropy, which the tables of `lines.TwoPhase` carry.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import cache
 
 import numpy as np
 
@@ -16,11 +16,16 @@ from commission.properties.lines import Array, TwoPhase
 from commission.properties.states import SaturationState, State
 
 
-@cache
-def _gauss() -> tuple[Array, Array]:
-    """Nodes and weights of an eight-point Gauss-Legendre rule on 0..1."""
-    x, w = np.polynomial.legendre.leggauss(8)
-    return (x + 1) / 2, w / 2
+def _mean_of_series(series: Sequence[float], start: float) -> float:
+    """Mean of a Chebyshev series from `start` to 1: the integral of T_n is T_(n+1)/(2n+2) - T_(n-1)/(2n-2)."""
+    mean = series[0] + 0.5 * series[1] * (1 + start)
+    before, here = start, 2 * start * start - 1
+    for n in range(2, len(series)):
+        after = 2 * start * here - before
+        gained = -1 / (n * n - 1) - after / (2 * n + 2) + before / (2 * n - 2)
+        mean += series[n] * gained / (1 - start)
+        before, here = here, after
+    return mean
 
 
 @dataclass(frozen=True)
@@ -72,11 +77,8 @@ class WetIsobar:
         a, b = self.bubble, self.dew
         if self.table is None:
             return b.T
-        nodes, weights = _gauss()
-        x = x_in + (1 - x_in) * nodes
-        series = self.table.series(b.p)[0]
-        terms = np.cos(np.outer(np.arccos(2 * x - 1), np.arange(len(series))))
-        return float(weights @ (a.T + x * (b.T - a.T) + terms @ series))
+        deviation = _mean_of_series(self.table.series(b.p)[0].tolist(), 2 * x_in - 1)
+        return a.T + 0.5 * (1 + x_in) * (b.T - a.T) + deviation
 
     @staticmethod
     def _deviations(x: float, series: Array | None) -> tuple[float, float, float, float]:
