@@ -33,7 +33,7 @@ def test_energy_is_kept(predicted: Predicted, system: str, number: int) -> None:
 @pytest.mark.parametrize(("system", "number"), EVERYWHERE)
 def test_the_sink_takes_up_the_heat(predicted: Predicted, system: str, number: int) -> None:
     """Flow times density times specific heat times temperature change of the sink, by textbook values: water 995 kg/m³
-    and 4179 J/(kg K), within 1 % from 10 to 65 °C; dry air, whose flow is known only where the fan runs at full speed."""
+    and 4179 J/(kg K), within 1 % from 10 to 65 °C; dry air, whose flow is known only with the fan at full speed."""
     found = predicted(system, number)
     v = values(found)
     change = v["heat_sink_outlet_temperature"] - v["heat_sink_inlet_temperature"]

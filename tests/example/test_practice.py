@@ -43,8 +43,8 @@ def test_the_design_condition_lies_in_the_bands_of_the_trade(predicted: Predicte
 
 @pytest.mark.parametrize("system", CONDITIONS)
 def test_no_discharge_line_is_too_hot_for_the_oil(predicted: Predicted, system: str) -> None:
-    """Below 110 °C on the discharge line (130 °C with carbon dioxide and its oils), and at least 10 K above the condensing
-    temperature, or above the hot water of a gas cooler, at every condition."""
+    """Below 110 °C on the discharge line (130 °C with carbon dioxide and its oils), and at least 10 K above
+    the condensing temperature, or above the hot water of a gas cooler, at every condition."""
     for number in range(len(CONDITIONS[system])):
         v = values(predicted(system, number))
         highest = 130.0 if system == "shower-water" else 110.0
