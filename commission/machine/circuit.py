@@ -46,7 +46,7 @@ class Parts:
 
 
 class Circuit:
-    """Refrigerant side of one machine at one condition; keeps the states that depend on one unknown alone.
+    """Refrigerant side of one machine at one condition; keeps what it has calculated.
 
     The second unknown is the condensing temperature of a condenser, or the outlet temperature of a gas cooler.
     """
@@ -55,17 +55,20 @@ class Circuit:
         self.machine = machine
         self.media = media
         self._low: dict[float, tuple[State, State]] = {}
+        self._drives: dict[tuple[float, float], float] = {}
+        self._end: State | None = None
+        self._cycles: dict[tuple[float, float], tuple[Compression, float, float]] = {}
 
     def low_side(self, evaporating: float) -> tuple[State, State]:
         """States at the evaporator outlet and at the suction port."""
         if evaporating not in self._low:
             m, fluid = self.machine, self.machine.refrigerant
-            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew(evaporating).p)
+            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew_pressure(evaporating))
             line = m.suction_line
             suction = outlet
             if line.pressure_loss or line.heating_share or line.warming:
                 warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
-                suction = fluid.vapour(outlet.T + warmer, fluid.dew(evaporating - line.pressure_loss).p)
+                suction = fluid.vapour(outlet.T + warmer, fluid.dew_pressure(evaporating - line.pressure_loss))
             if m.suction_regulator is not None and suction.p > m.suction_regulator:
                 suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
             self._low[evaporating] = (outlet, suction)
@@ -81,21 +84,26 @@ class Circuit:
 
     def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
         """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
-        outlet, suction = self.low_side(evaporating)
-        discharge, liquid = self.high_side(evaporating, second)
-        compressor, share = self.machine.compressor, self.media.speed_share
-        compression = compressor.compress(self.machine.refrigerant, suction, discharge, share)
-        source = compression.flow * (outlet.h - liquid.h)
-        sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
-        return compression, source, sink
+        if (evaporating, second) not in self._cycles:
+            outlet, suction = self.low_side(evaporating)
+            discharge, liquid = self.high_side(evaporating, second)
+            compressor, share = self.machine.compressor, self.media.speed_share
+            compression = compressor.compress(self.machine.refrigerant, suction, discharge, share, self._end)
+            self._end = compression.isentropic_end
+            source = compression.flow * (outlet.h - liquid.h)
+            sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
+            self._cycles[evaporating, second] = compression, source, sink
+        return self._cycles[evaporating, second]
 
     def source_drive(self, evaporating: float, second: float) -> float:
         """Temperature that drives the evaporator: for blends the mean along it."""
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
             return evaporating
-        liquid = self.high_side(evaporating, second)[1]
-        return fluid.mean_evaporating_temperature(fluid.dew(evaporating).p, liquid.h)
+        if (evaporating, second) not in self._drives:
+            liquid, pressure = self.high_side(evaporating, second)[1], fluid.dew_pressure(evaporating)
+            self._drives[evaporating, second] = fluid.mean_evaporating_temperature(pressure, liquid.h)
+        return self._drives[evaporating, second]
 
     def source_gap(self, evaporating: float, second: float, taken: float) -> float:
         """Heat that the source gives less heat that the refrigerant takes, in tens of kelvin of the exchanger."""

@@ -58,8 +58,11 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: as `balance`.
         """
-        balance = _balance(_Circuit(self, media), start)
-        return _Circuit(replace(self, superheat=balance.superheat), media).point(balance)
+        circuit = _Circuit(self, media)
+        balance = _balance(circuit, start)
+        return (circuit if balance.superheat == self.superheat else circuit.with_superheat(balance.superheat)).point(
+            balance
+        )
 
     def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
         """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
@@ -149,6 +152,7 @@ class _Circuit(Circuit):
     def __init__(self, machine: SingleStage, media: Media) -> None:
         super().__init__(machine, media)
         self._high: dict[float, tuple[float, State]] = {}
+        self._bubbles: dict[float, float] = {}
 
     def second(self, balance: Balance) -> float:
         """The condensing temperature."""
@@ -168,9 +172,9 @@ class _Circuit(Circuit):
         """Pressure at the discharge port and state of the liquid before the valve."""
         if condensing not in self._high:
             m, fluid = self.machine, self.machine.refrigerant
-            pressure = fluid.dew(condensing).p
+            pressure = fluid.dew_pressure(condensing)
             liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
-            discharge = fluid.dew(condensing + m.discharge_line_loss).p if m.discharge_line_loss else pressure
+            discharge = fluid.dew_pressure(condensing + m.discharge_line_loss) if m.discharge_line_loss else pressure
             self._high[condensing] = (discharge + m.gas_pressure, liquid)
         return self._high[condensing]
 
@@ -184,7 +188,11 @@ class _Circuit(Circuit):
     def _bubble_temperature(self, condensing: float) -> float:
         """Bubble point in K at the dew pressure of `condensing`."""
         fluid = self.machine.refrigerant
-        return fluid.bubble_temperature(fluid.dew(condensing).p) if fluid.is_blend else condensing
+        if not fluid.is_blend:
+            return condensing
+        if condensing not in self._bubbles:
+            self._bubbles[condensing] = fluid.bubble_temperature(fluid.dew_pressure(condensing))
+        return self._bubbles[condensing]
 
     def sink_gap(self, condensing: float, given: float, share: float) -> float:
         """Heat that the sink takes less heat that the refrigerant gives, in tens of kelvin of the exchanger."""

@@ -34,7 +34,7 @@ def solve(
     *,
     difference: float = 0.02,
     largest_step: float = 8.0,
-    tolerance: float = 1e-9,
+    tolerance: float = 1e-8,
     evaluations: int = 120,
     jacobian: Sequence[Sequence[float]] | None = None,
 ) -> Solution:
@@ -52,6 +52,7 @@ def solve(
     r = list(residuals(x))
     count = 1
     matrix: list[list[float]] | None = [list(row) for row in jacobian] if jacobian is not None else None
+    known = matrix
     fresh = False
     while max(abs(v) for v in r) > tolerance:
         if count >= evaluations:
@@ -72,10 +73,11 @@ def solve(
             continue
         x_new, r_new, taken, _ = moved
         slow = _worst(r_new) > 0.5 * _worst(r)
-        matrix = None if slow and not fresh else _broyden(matrix, taken, [b - a for a, b in zip(r, r_new, strict=True)])
+        known = _broyden(matrix, taken, [b - a for a, b in zip(r, r_new, strict=True)])
+        matrix = None if slow and not fresh else known
         fresh = False
         x, r = x_new, r_new
-    return Solution(tuple(x), tuple(r), count, tuple(tuple(row) for row in (matrix or _identity(len(x)))))
+    return Solution(tuple(x), tuple(r), count, tuple(tuple(row) for row in (matrix or known or _identity(len(x)))))
 
 
 def _worst(r: Sequence[float]) -> float:
@@ -105,6 +107,12 @@ def _differences(residuals: Residuals, x: list[float], r: list[float], step: flo
 def _linear(matrix: list[list[float]], right: list[float]) -> list[float] | None:
     """Gauss elimination with row exchange; None where the matrix is singular."""
     n = len(right)
+    if n == 2:
+        (a, b), (c, d) = matrix
+        determinant = a * d - b * c
+        if abs(determinant) < 1e-14 * max(abs(a), abs(b), abs(c), abs(d), 1.0):
+            return None
+        return [(right[0] * d - b * right[1]) / determinant, (a * right[1] - right[0] * c) / determinant]
     rows = [[*matrix[i], right[i]] for i in range(n)]
     for i in range(n):
         pivot = max(range(i, n), key=lambda k: abs(rows[k][i]))

@@ -87,7 +87,7 @@ def _exact(
     free = list(problem.free)
     gaps, plan, points = gaps_of(problem, a, start, starts)
     for trial in range(30):
-        if float(np.abs(gaps).max(initial=0.0)) < 1e-6:
+        if float(np.abs(gaps).max(initial=0.0)) < 1e-5:
             return Levels.from_logs(tuple(logs)), plan, points
         if not store or trial in (6, 12, 18):
             store[:] = [_level_jacobian(problem, a, logs, gaps, points)]
