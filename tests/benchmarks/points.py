@@ -1,0 +1,97 @@
+"""One operating point: against `PropsSI` with `fsolve`, and against the bare calls of the equation of state it makes."""
+
+from __future__ import annotations
+
+import time
+
+from commission.machine import OperatingPoint
+from commission.properties import Refrigerant, refrigerant
+from tests.benchmarks.machines import REFRIGERANTS, machine, media
+from tests.benchmarks.plain import Answer, Plain, name_for
+from tests.benchmarks.timing import Row, interleaved, spent
+
+PURE, BLEND, BARE = 15.0, 3000.0, 2.5
+SOURCE, SINK = 2.0, 28.0
+
+
+def bare(fluid: Refrigerant, count: int) -> None:
+    """So many updates at (density, temperature) in the gas, each with the pressure, h, s, cv and two derivatives read."""
+    local = fluid._equation._local
+    state, inputs, by_rho, by_T = local.state, local.inputs, local.by_rho, local.by_T
+    rho, T = 0.8 * fluid.dew(290.0).rho, 290.0
+    for n in range(count):
+        state.update(inputs, rho, T + 1e-3 * n)
+        state.p()
+        state.hmass()
+        state.smass()
+        state.cvmass()
+        state.first_partial_deriv(*by_rho)
+        state.first_partial_deriv(*by_T)
+
+
+def agree(ours: OperatingPoint, other: Answer, name: str) -> None:
+    """Raises AssertionError where the two answers differ by more than 0.05 K or 0.5 %."""
+    balance = ours.balance
+    for what, a, b, allowed in (
+        ("temperature that drives the evaporator", balance.source_drive, other.source_drive, 0.05),
+        ("temperature that drives the condenser", balance.sink_drive, other.sink_drive, 0.05),
+        ("discharge temperature", ours.discharge_temperature, other.discharge_temperature, 0.25),
+        ("heat", balance.heat_from_source, other.heat, 0.005 * other.heat),
+        ("power", balance.compression.power, other.power, 0.005 * other.power),
+    ):
+        assert abs(a - b) <= allowed, f"{name}: {what} {a} here, {b} by PropsSI"
+
+
+def against_plain(name: str, repetitions: int) -> Row:
+    """Our operating point from a cold start against that of PropsSI and fsolve, whose answers must agree."""
+    fluid = refrigerant(name)
+    ours, at = machine(fluid), media(SOURCE, SINK)
+    plain = Plain(ours, at, name_for(fluid))
+    point = ours.operate(at)
+    slow = plain.glides
+    if slow:  # seconds for each point: once, with ours around it
+        before = interleaved({"ours": (lambda: ours.operate(at), 20)}, max(1, repetitions // 2))["ours"]
+        start = time.process_time()
+        other = plain.answer()
+        theirs = time.process_time() - start
+        after = interleaved({"ours": (lambda: ours.operate(at), 20)}, max(1, repetitions // 2))["ours"]
+        mine = 0.5 * (before + after)
+    else:
+        other = plain.answer()
+        times = interleaved({"ours": (lambda: ours.operate(at), 10), "plain": (plain.answer, 1)}, repetitions)
+        mine, theirs = times["ours"], times["plain"]
+    agree(point, other, name)
+    least = BLEND if slow else PURE
+    ratio = theirs / mine
+    how = "mixture" if slow else ("pseudo-pure" if "&" not in plain.name and fluid.is_blend else "pure")
+    return Row(
+        f"operating point of {name}, PropsSI ({how}) + fsolve over ours",
+        f"{ratio:,.0f} ({spent(theirs)} : {spent(mine)})",
+        f"at least {least:,.0f}",
+        ratio >= least,
+    )
+
+
+def against_bare(name: str, repetitions: int) -> Row:
+    """Our operating point against the same number of bare calls of the equation of state."""
+    fluid = refrigerant(name)
+    ours, at = machine(fluid), media(SOURCE, SINK)
+    ours.operate(at)
+    before = fluid.calls
+    ours.operate(at)
+    count = fluid.calls - before
+    times = interleaved(
+        {"ours": (lambda: ours.operate(at), 10), "bare": (lambda: bare(fluid, count), 10)}, repetitions
+    )
+    ratio = times["ours"] / times["bare"]
+    return Row(
+        f"operating point of {name} over its {count} bare calls",
+        f"{ratio:.1f} ({spent(times['ours'])} : {spent(times['bare'])})",
+        f"at most {BARE}",
+        ratio <= BARE,
+    )
+
+
+def run(repetitions: int = 15, names: tuple[str, ...] = REFRIGERANTS) -> list[Row]:
+    """All rows about single points."""
+    return [against_plain(n, repetitions) for n in names] + [against_bare(n, repetitions) for n in names]
