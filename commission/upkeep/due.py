@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Literal
 
 from commission.errors import NotCalculatedError
 from commission.records import FiledRecord, history, in_force
-from commission.safety import MARKS, LeakDuty, fluid_of, leak_duty, substance_of
+from commission.safety import MARKS, LeakDuty, fact, fluid_of, leak_duty, substance_of
 from commission.upkeep.counting import Day, counted_from, last_done, last_failed
 from commission.upkeep.entries import LAW, DutyEntry, Mark
 from commission.upkeep.intervals import Interval
@@ -19,6 +19,10 @@ if TYPE_CHECKING:
     from commission.checklists import Item
     from commission.description import LoadedPlant
     from commission.description.model import Instrument
+
+
+STRICTEST_MONTHS = 3
+"""The interval of the last row of EU 2024/573, article 5(6): from 500 t CO₂ equivalent, or 100 kg of annex II."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -150,7 +154,7 @@ def _timing(entry: DutyEntry, law: LeakDuty) -> _Timing:
     if law.applies and law.months is not None:
         note = law.reason
         if law.months_with_detection is not None:
-            note = (
+            note = _detection_duty(law) + (
                 f"every {law.months_with_detection} months where a leakage detection system in the sense of the law "
                 "watches the whole system: then write that interval in upkeep.yaml"
             )
@@ -161,6 +165,15 @@ def _timing(entry: DutyEntry, law: LeakDuty) -> _Timing:
     else:
         note = f"{law.document}: {law.reason}"
     return _Timing(entry.otherwise.every, entry.otherwise.source, entry.otherwise.mark, note)
+
+
+def _detection_duty(law: LeakDuty) -> str:
+    """From the amount of the strictest row a leakage detection system is itself a duty (EU 2024/573, article 6)."""
+    if law.months != STRICTEST_MONTHS:
+        return ""
+    rule = fact("detection_system_duty")
+    by = f"{rule.source}; {MARKS[rule.mark]}"
+    return f"a leakage detection system is a duty for this amount, proved every 12 months ({by}); "
 
 
 def _mark(text: str) -> Mark:

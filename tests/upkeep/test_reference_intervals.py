@@ -140,6 +140,8 @@ def test_leak_checks_by_the_european_table(
     by_law = duty.source.startswith("Regulation (EU) 2024/573")
     assert by_law is (months is not None)
     assert duty.mark == ("V1" if by_law else "M")
+    # article 6: from 500 t or 100 kg a leakage detection system is a duty (from memory)
+    assert ("a leakage detection system is a duty" in (duty.note or "")) is (months == 3)
 
 
 def test_a_found_leak_is_looked_at_again_within_a_month(store: Store) -> None:
