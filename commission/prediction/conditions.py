@@ -40,7 +40,7 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     flows = [("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)]
     if once_through(facts, case.conditions):
         flows.pop()
-        hot = case.conditions["heat_sink_outlet_temperature"]
+        hot = _of_design(facts, case, "heat_sink_outlet_temperature")
         cold = axes[1].rated
         axes[1] = ConditionAxis(axes[1].key, cold, min(cold, KELVIN + 5.0), max(cold, hot - 15.0))
         axes.append(ConditionAxis("heat_sink_outlet_temperature", hot, hot - 15.0, hot + 15.0))
@@ -64,7 +64,7 @@ def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float
     inlet, outlet = f"{side}_inlet_temperature", f"{side}_outlet_temperature"
     design = facts.system.design
     if side == "heat_sink" and once_through(facts, case.conditions):
-        return inlet, case.conditions[inlet]
+        return inlet, _of_design(facts, case, inlet)
     first, second = (outlet, inlet) if outlet in case.conditions else (inlet, outlet)
     for key in (first, second):
         stated = getattr(design, key) if design is not None else None
@@ -73,6 +73,12 @@ def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float
     if outlet in case.conditions:
         return outlet, case.conditions[outlet]
     return inlet, plan.rated.source_temperature if side == "heat_source" else plan.rated.sink_temperature
+
+
+def _of_design(facts: Facts, case: Case, key: str) -> float:
+    """The value of the design where it is stated, else of the rated point."""
+    stated = getattr(facts.system.design, key) if facts.system.design is not None else None
+    return case.conditions[key] if stated is None else float(stated)
 
 
 def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> ConditionAxis:

@@ -56,6 +56,8 @@ def test_a_cold_room_condenses_in_winter(written: Written) -> None:
     winter = model.predict({"heat_sink_inlet_temperature": 278.15})
     assert winter.regime == "condensing below the critical point"
     assert winter.expected["condensing_temperature"].value < 295
+    assert 1.5 < winter.expected["subcooling"].value < 8
+    assert winter.expected["gas_cooler_approach"].value > 0
     assert winter.expected["cooling_cop"].value > model.predict().expected["cooling_cop"].value
 
 

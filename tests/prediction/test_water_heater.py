@@ -123,3 +123,12 @@ rated_points:
     warm = model.predict({"heat_sink_inlet_temperature": 298.15}).expected
     assert warm["heat_sink_flow"].value > 1.4 * e["heat_sink_flow"].value
     assert "gas_cooler_approach" not in warm
+
+
+def test_the_design_condition_is_where_it_is_shown(written: Written) -> None:
+    """A design with other water than the rated point sets the rated condition of a machine that heats in one pass."""
+    body = HEATER + POINT.format(7, 10, 8.15, 2.11) + "design: {heat_sink_inlet_temperature: 14 °C}\n"
+    model = fit(written(body), "it")
+    assert model.rated_condition["heat_sink_inlet_temperature"] == pytest.approx(287.15)
+    assert model.rated_condition["heat_sink_outlet_temperature"] == pytest.approx(333.15)
+    assert model.condition_axes["heat_sink_inlet_temperature"].low > KELVIN
