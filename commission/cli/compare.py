@@ -30,6 +30,7 @@ def command(plant: Path, record: Path, as_json: bool) -> None:
     from commission.records import is_filed, judge_record, read_filed, read_record
 
     loaded = load_plant(plant)
+    outcome: str | None
     if is_filed(record):
         outcome, text, data = _filed(loaded, read_filed(record))
     else:

@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import click
 
 from commission.cli.options import check_system, plant_argument, say
-from commission.errors import InputError, Problem
+from commission.errors import InputError, NotCalculatedError, Problem
+
+if TYPE_CHECKING:
+    from commission.description import LoadedPlant
 
 
 @click.command(name="record", short_help="File a visit for good, its verdict frozen.")
@@ -16,31 +21,75 @@ from commission.errors import InputError, Problem
 @click.option("--attach", type=click.Path(path_type=Path), help="Folder with the files that the record names.")
 @click.option("--form", "stage", metavar="STAGE", help="Print a blank record of this checklist stage instead.")
 @click.option("--system", metavar="ID", help="System of the blank record.")
-def command(plant: Path, file: Path | None, attach: Path | None, stage: str | None, system: str | None) -> None:
+@click.option("--log", type=click.Path(path_type=Path), help="Fill the blank record from a logger's CSV file.")
+@click.option("--mapping", type=click.Path(path_type=Path), help="What the columns of the logger mean, as YAML.")
+def command(
+    plant: Path,
+    file: Path | None,
+    attach: Path | None,
+    stage: str | None,
+    system: str | None,
+    log: Path | None,
+    mapping: Path | None,
+) -> None:
     """File the visit FILE under PLANT/records and print the path of the filed record.
 
     A filed record is never rewritten; a correction is a new record that names the old one. With --form a blank record
-    to fill in is printed and nothing is filed.
+    to fill in is printed and nothing is filed; with --log and --mapping it holds the steadiest stretch of the log.
     """
     if (file is None) == (stage is None):
         raise InputError(Problem("give either the FILE to be filed or --form with a stage", path="record"))
+    if (log is None) != (mapping is None) or (log is not None and stage is None):
+        raise InputError(Problem("--log and --mapping belong together, with --form", path="record"))
     from commission.description import load_plant
 
     loaded = load_plant(plant)
     if file is not None:
-        from commission.cli.judgement import as_text
-        from commission.records import file_record, judge_record, read_record
-
-        say(as_text(judge_record(loaded, read_record(file, loaded)), loaded))
-        click.echo(str(file_record(loaded, file, attach)))
+        _file(loaded, file, attach)
         return
-    from commission.prediction import fit
-    from commission.records import record_form
-
     known = list(loaded.plant.systems)
     if system is None and len(known) > 1:
         raise InputError(Problem("say which system the form is for", path="--system", allowed=", ".join(known)))
     chosen = system or known[0]
     check_system(chosen, known)
     assert stage is not None
-    click.echo(record_form(loaded, chosen, stage, fit(loaded, chosen)))
+    if log is not None and mapping is not None:
+        click.echo(_from_log(loaded, chosen, stage, log, mapping))
+    else:
+        click.echo(_blank(loaded, chosen, stage))
+
+
+def _file(loaded: LoadedPlant, file: Path, attach: Path | None) -> None:
+    from commission.records import file_record, read_filed
+
+    path = file_record(loaded, file, attach, filed_at=dt.datetime.now().astimezone())
+    filed = read_filed(path)
+    say(filed.filed.sentence)
+    for text in (*filed.filed.impossible, *filed.filed.warnings):
+        say(f"mind: {text}")
+    for item in filed.filed.open_items:
+        say(f"open item {item.number}: {item.what}")
+    click.echo(str(path))
+
+
+def _blank(loaded: LoadedPlant, system: str, stage: str) -> str:
+    from commission.prediction import fit
+    from commission.records import record_form
+
+    try:
+        model = fit(loaded, system)
+    except NotCalculatedError as error:
+        say(f"the readings are those of measured_with, since nothing is calculated: {error.problems[0].message}")
+        model = None
+    return record_form(loaded, system, stage, model)
+
+
+def _from_log(loaded: LoadedPlant, system: str, stage: str, log: Path, mapping: Path) -> str:
+    from commission.records.logger import draft_of, quietest, read_log, read_mapping
+
+    read = read_log(log, read_mapping(mapping, loaded), loaded.barometric_pressure)
+    window = quietest(read)
+    if window is None:
+        raise InputError(Problem("in no stretch of 20 minutes did everything stand still by the site limits",
+                                 file=log.name, allowed="a longer log, or whole cycles read by hand"))  # fmt: skip
+    return draft_of(read, window, system=system, stage=stage, mode="trim", people={"operator": {"name": ""}})
