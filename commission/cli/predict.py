@@ -82,18 +82,6 @@ def _predict(loaded: LoadedPlant, system: str, conditions: Mapping[str, float] |
         model = fit(loaded, system)
     except NotCalculatedError as error:
         return error.problems[0].message
-    unknown = [key for key in conditions or {} if key not in model.condition_axes]
-    if unknown:
-        from commission.errors import nearest
-
-        known = ", ".join(model.condition_axes)
-        raise InputError(
-            *(
-                Problem("this is not a condition of this system", path=f"--at {k}", allowed=known,
-                        nearest=nearest(k, model.condition_axes))
-                for k in unknown
-            )
-        )  # fmt: skip
     try:
         return model.predict(conditions)
     except NotCalculatedError as error:

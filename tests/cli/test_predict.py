@@ -86,7 +86,7 @@ def test_text_says_gauge_and_states_the_coverage(commission: Run, example_folder
         (["--system", "cold-room", "--at", "heat_sink_inlet_temperature=31"], "write its unit"),
         (["--system", "cold-room", "--at", "heat_sink_inlet_temperature=nan °C"], "a number is wanted"),
         (["--system", "cold-room", "--at", "heat_sink_inlet_temperature"], "write KEY=VALUE"),
-        (["--system", "cold-room", "--at", "superheat=5 K"], "not a condition of this system"),
+        (["--system", "cold-room", "--at", "superheat=5 K"], "no condition of this system"),
     ],
 )
 def test_wrong_use_leaves_with_two_and_says_what_to_write(
@@ -97,6 +97,19 @@ def test_wrong_use_leaves_with_two_and_says_what_to_write(
     assert done.returncode == 2
     assert words in done.stderr
     assert done.stdout == ""
+
+
+def test_a_wet_bulb_and_the_other_end_of_a_medium_are_conditions_too(commission: Run, example_folder: Path) -> None:
+    """What contracts state, outdoor wet bulb and entering water, is taken where the system is rated otherwise."""
+    done = commission(
+        "predict", example_folder, "--system", "floor-heating", "--json",
+        "--at", "heat_source_inlet_temperature=2 °C", "--at", "heat_source_wet_bulb=1 °C",
+        "--at", "heat_sink_inlet_temperature=29 °C",
+    )  # fmt: skip
+    assert done.returncode == 0, done.stderr
+    conditions = json.loads(done.stdout)["systems"]["floor-heating"]["conditions"]
+    assert conditions["heat_sink_inlet_temperature"] == {"value": pytest.approx(29.0), "unit": "°C"}
+    assert 0.8 < conditions["heat_source_relative_humidity"]["value"] < 0.9  # psychrometric chart, about 84 %
 
 
 def test_all_wrong_conditions_are_told_in_one_run(commission: Run, example_folder: Path) -> None:
