@@ -15,6 +15,7 @@ from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
+from commission.manual.proof_pages import before_the_visit, test_sheets
 from commission.manual.records_pages import (
     Archive,
     certificates,
@@ -29,7 +30,6 @@ from commission.manual.records_pages import (
 from commission.manual.saturation import saturation_page
 from commission.manual.states import Standing
 from commission.manual.store import Store
-from commission.manual.proof_pages import before_the_visit, test_sheets
 
 if TYPE_CHECKING:
     from commission.review import Finding

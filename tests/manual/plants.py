@@ -66,12 +66,12 @@ def _visit(
 def file_visits(folder: Path) -> None:
     """Files a trim that raises an open item, an accepted test by a frozen sheet, and a later visit that deviates.
 
-    The tolerance of the guarantee is widened so that the instruments can prove it.
+    The plant keeps its first system only, and its guarantee gets a tolerance that the instruments can prove.
     """
     from commission.prediction import fit  # late: the tests fit once for each description
 
     plant = folder / "plant.yaml"
-    text = plant.read_text(encoding="utf-8")
+    text = re.sub(r"^include: *\[[^\]]*\]\n", "", plant.read_text(encoding="utf-8"), flags=re.MULTILINE)
     wider, changed = re.subn(r"below: *[0-9.]+ *%", "below: 15 %", text)
     assert changed
     plant.write_text(wider, encoding="utf-8")
