@@ -123,6 +123,18 @@ def test_medium_balance(facts: Facts, capacity: str, severity: str | None) -> No
         assert figure(remark, "carried by flow and temperature change").value == pytest.approx(carried, rel=2e-3)
 
 
+@pytest.mark.parametrize(("own", "fires"), [({}, False), ({"heat_sink_flow": "0.2 m3/h"}, True)])
+def test_a_water_heater_in_one_pass_sets_its_flow(facts: Facts, own: dict[str, str], fires: bool) -> None:
+    """140 L/h over 50 K carry 8.1 kW; at another point the machine sets another flow, unless that point states it."""
+    point = {"heat_source_inlet_temperature": "-7 °C", "heat_sink_inlet_temperature": "10 °C",
+             "heat_sink_outlet_temperature": "60 °C", "heating_capacity": "6 kW", "power_input": "2 kW"}  # fmt: skip
+    sink = {"medium": "water", "space": None, "flow": "140 L/h"}
+    found = first_law.medium_balance(
+        facts({"duty": "water_heating", "heat_sink": sink, "rated_points": [{**point, **own}]})
+    )
+    assert bool(list(found)) == fires
+
+
 def test_media_must_change_the_right_way(facts: Facts) -> None:
     """A source that leaves warmer and a sink that leaves colder are both errors."""
     design = {"heat_source_inlet_temperature": "4 °C", "heat_source_outlet_temperature": "6 °C",
