@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import random
 from collections.abc import Callable
 from itertools import pairwise
 from pathlib import Path
@@ -10,6 +11,9 @@ import pytest
 
 from commission.description import LoadedPlant, load_plant
 from commission.prediction import SystemModel, fit
+from commission.prediction.building import media
+from commission.prediction.conditions import complete
+from commission.prediction.expected import expected_values
 
 Written = Callable[[str], LoadedPlant]
 KELVIN = 273.15
@@ -132,3 +136,26 @@ def test_the_design_condition_is_where_it_is_shown(written: Written) -> None:
     assert model.rated_condition["heat_sink_inlet_temperature"] == pytest.approx(287.15)
     assert model.rated_condition["heat_sink_outlet_temperature"] == pytest.approx(333.15)
     assert model.condition_axes["heat_sink_inlet_temperature"].low > KELVIN
+
+
+@pytest.mark.long
+def test_random_conditions(heater: SystemModel) -> None:
+    """700 seeded conditions, air -15 to 30 °C, water 3 to 48 °C to 50 to 75 °C: always a balance, first law to 1e-6,
+    below Carnot between the media, no crossing at the cold end."""
+    rng = random.Random(11)
+    for _ in range(700):
+        asked = {
+            "heat_source_inlet_temperature": KELVIN + rng.uniform(-15, 30),
+            "heat_source_relative_humidity": rng.uniform(0.3, 1.0),
+            "heat_sink_inlet_temperature": KELVIN + rng.uniform(3, 48),
+            "heat_sink_outlet_temperature": KELVIN + rng.uniform(50, 75),
+        }
+        whole, _, _ = complete(heater.condition_axes, asked)
+        around = media(heater.facts, heater.fit.plan, whole)
+        point = heater.fit.plan.machine.operate(around)
+        found = expected_values(heater.facts, heater.fit.plan, around, point).values
+        work = point.balance.compression
+        given = point.balance.heat_from_source + point.line_gain + work.power - work.shell_loss
+        assert point.balance.heat_to_sink == pytest.approx(given, rel=1e-6)
+        assert found["cooling_capacity"] / work.power < found["carnot_cop"]
+        assert found["gas_cooler_approach"] > 0
