@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import itertools
 import logging
 import posixpath
+import re
 from collections.abc import Callable, Iterable, Mapping
 from pathlib import Path
 from typing import Any
@@ -85,7 +87,7 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
     def on_page_content(self, html: str, *, page: Page, config: MkDocsConfig, files: Files) -> str:
         """Cleans what came from Markdown and notes the page for the search."""
         sheet = self.sheets[page.file.src_uri]
-        body = html if isinstance(page, GeneratedPage) else clean(html)
+        body = html if isinstance(page, GeneratedPage) else with_wide_tables(clean(html))
         title = sheet.title if isinstance(page, GeneratedPage) else (page.title or sheet.title)
         self.entries.append(search.entry(page.file.url, title, sheet.kicker, body))
         return body
@@ -151,6 +153,17 @@ def clean(html: str) -> Markup:
             strip_comments=True,
         )
     )
+
+
+def with_wide_tables(cleaned: Markup) -> Markup:
+    """Each table of a cleaned page inside a region of its own, which scrolls sideways where the screen is narrow."""
+    numbers = itertools.count(1)
+
+    def opened(_: re.Match[str]) -> str:
+        label = f"Table {next(numbers)}, scrolls sideways"
+        return f'<div class="wide" tabindex="0" role="region" aria-label="{label}"><table>'
+
+    return Markup(re.sub("<table>", opened, str(cleaned)).replace("</table>", "</table></div>"))
 
 
 class _Collect(logging.Handler):

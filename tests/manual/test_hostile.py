@@ -75,6 +75,13 @@ def test_a_system_that_cannot_be_calculated_says_why_and_stops_no_other(hostile:
     assert (folder / "systems" / "impossible" / "day-sheet.html").is_file()
 
 
+def test_tables_of_the_owner_scroll_inside_themselves(folder: Path) -> None:
+    """Each table of a Markdown page lies in a region with a name of its own, and the page stays well formed."""
+    text = (folder / "pages" / "call & ask.html").read_text(encoding="utf-8")
+    assert text.count("<table>") == text.count("</table></div>") == 1
+    assert 'aria-label="Table 1, scrolls sideways"' in text
+
+
 @pytest.mark.parametrize(
     "dirty",
     [
