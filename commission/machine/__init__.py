@@ -11,6 +11,7 @@ from commission.machine.gas_cooler import (
     lifting_best_pressure,
 )
 from commission.machine.head_pressure import HeadPressure
+from commission.machine.maps import OperatingMap, operating_map
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
 from commission.machine.single_stage import FREE, HELD, LIMITED, LOWEST, REGULATED, SingleStage
@@ -35,6 +36,7 @@ __all__ = [
     "LeavingAir",
     "Media",
     "NoSolutionError",
+    "OperatingMap",
     "OperatingPoint",
     "Parts",
     "PolynomialCompressor",
@@ -57,6 +59,7 @@ __all__ = [
     "liao_best_pressure",
     "lifting_best_pressure",
     "liquid_stream",
+    "operating_map",
     "solve",
     "ten_coefficients",
 ]

@@ -10,12 +10,16 @@ is zero.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+
+import numpy as np
 
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
 from commission.properties import saturated_air, saturated_air_at_enthalpy
+from commission.properties.lines import Array
+from commission.properties.psychrometrics import saturated_air_rows
 
 LATENT = 2.501e6
 """Latent heat of water at 0 °C in J/kg (ASHRAE Handbook Fundamentals 2017, ch. 1, eq. 30)."""
@@ -66,6 +70,32 @@ def _wet_heat(stream: Stream, refrigerant: float, conductance: float, air_share:
     transfer = outer / air.cp / (1 + slope * outer / (air.cp * inner))
     drive = air.h - cold.h + fusion * (air.W - cold.W)
     return stream.mass_flow * -math.expm1(-transfer / stream.mass_flow) * drive
+
+
+def coil_heats(streams: Sequence[Stream], refrigerant: Array, conductances: Array, air_share: float) -> Array:
+    """`coil_heat` of many air streams: the same equations for arrays.
+
+    `refrigerant` in K has the shape (any, streams, any); there is one of the `conductances` for each stream.
+    """
+    airs = [s.air for s in streams]
+    assert all(a is not None for a in airs)
+    p, h, W, cp = (np.array([getattr(a, name) for a in airs])[:, None] for name in ("p", "h", "W", "cp"))
+    warm, rate, flow = (
+        np.array([getattr(s, name) for s in streams])[:, None] for name in ("temperature", "capacity_rate", "mass_flow")
+    )
+    conductance = conductances[:, None]
+    dry = rate * -np.expm1(-conductance / rate) * (warm - refrigerant)
+    x = np.clip((FREEZING - refrigerant) / FROST_SPAN, 0.0, 1.0)
+    fusion = FUSION * x * x * (3 - 2 * x)
+    cold_W, cold_h = saturated_air_rows(np.minimum(refrigerant, warm), p)
+    surface = refrigerant + (1 - air_share) * (warm - refrigerant)
+    warm_W, warm_h = saturated_air_rows(np.minimum(surface, warm), p)
+    slope = (warm_h - cold_h + fusion * (warm_W - cold_W)) / np.maximum(surface - refrigerant, 1e-9)
+    outer = conductance / air_share
+    resistance = 1 / outer + slope / cp * (1 - air_share) / conductance
+    transfer = 1 / (cp * resistance)
+    wet = flow * -np.expm1(-transfer / flow) * (h - cold_h + fusion * (W - cold_W))
+    return np.asarray(np.where(refrigerant >= warm, dry, np.maximum(dry, wet)))
 
 
 def leaving_air(stream: Stream, heat: float, refrigerant: float, conductance: float, air_share: float) -> LeavingAir:

@@ -25,7 +25,7 @@ _Pieces = dict[int, tuple[tuple[float, ...], ...]]
 
 
 def _piece(series: Array, n: int) -> tuple[tuple[float, ...], ...]:
-    """Coefficients of the polynomials, in the distance from the middle of piece `n`, that stand for each row of `series`.
+    """Polynomials in the distance from the middle of piece `n`, one for each row of `series`, lowest power first.
 
     Horner's rule on eight floats is several times quicker than a series of numpy at a single point.
     """
@@ -183,7 +183,7 @@ class TwoPhase:
         """Chebyshev coefficients in 2x - 1 of the four tables at pressure `p` (Pa): shape (4, terms in x)."""
         w = (2.0 * math.sqrt(math.log(self.p_critical / p)) - self.high - self.low) / (self.high - self.low)
         terms = np.cos(np.arange(len(self.tables)) * math.acos(min(1.0, max(-1.0, w))))
-        return terms.dot(self._flat).reshape(self.tables.shape[1:])
+        return np.asarray(terms.dot(self._flat).reshape(self.tables.shape[1:]))
 
     @cached_property
     def _flat(self) -> Array:

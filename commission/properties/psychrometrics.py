@@ -12,8 +12,12 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
+import numpy as np
+from numpy.typing import NDArray
+
 from commission.properties.errors import PropertyRangeError, celsius
 
+Array = NDArray[np.float64]
 COLDEST, HOTTEST = 173.15, 473.15  # K; the range of equations 5 and 6
 TRIPLE_POINT = 273.16
 MASS_RATIO = 0.621945  # of water to dry air, equation 20
@@ -121,6 +125,22 @@ def saturated_air_at_enthalpy(h: float, p: float) -> MoistAir:
 def saturated_air(T: float, p: float) -> MoistAir:
     """Saturated air at `T` (K) and `p` (Pa). Raises PropertyRangeError outside the range."""
     return moist_air(T, p, relative_humidity=1.0)
+
+
+def saturated_air_rows(T: Array, p: Array) -> tuple[Array, Array]:
+    """Humidity ratio and enthalpy (J per kg dry air) of saturated air for arrays of `T` (K) and `p` (Pa).
+
+    Raises:
+        PropertyRangeError: any temperature outside -100 °C to 200 °C, or at which water boils.
+    """
+    for end in (float(T.min()), float(T.max())):
+        _humidity_ratio(saturation_pressure(end), float(p.min()))
+    vapour = np.empty_like(T)
+    for here, (a, b, c, d, e, f, g) in ((T < TRIPLE_POINT, _ICE), (T >= TRIPLE_POINT, _WATER)):
+        t = T[here]
+        vapour[here] = np.exp(a / t + b + t * (c + t * (d + t * (e + t * f))) + g * np.log(t))
+    W = MASS_RATIO * vapour / (p - vapour)
+    return W, CP_AIR * (T - 273.15) + W * (LATENT + CP_VAPOUR * (T - 273.15))
 
 
 def saturation_pressure(T: float) -> float:

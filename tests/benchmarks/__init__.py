@@ -1,1 +1,4 @@
-"""Speed, measured side by side in one run and printed as ratios: `python -m tests.benchmarks`. Nothing here is a test."""
+"""Speed, measured side by side in one run and printed as ratios.
+
+`python -m tests.benchmarks` prints the table; nothing here is a test.
+"""

@@ -11,7 +11,7 @@ KELVIN = 273.15
 
 
 def machine(fluid: Refrigerant, air_share: float | None = None, heating_share: float = 0.0) -> SingleStage:
-    """A machine with the displacement that takes about 5 kW at -5 °C and 40 °C; `air_share` makes its coil a wet one."""
+    """A machine that takes about 5 kW at -5 °C and 40 °C; `air_share` makes its coil a wet one."""
     effect = fluid.dew(268.15).h - fluid.bubble(313.15).h
     displacement = 5000.0 / (fluid.dew(268.15).rho * effect * 0.8)
     return SingleStage(

@@ -1,4 +1,4 @@
-"""The same machine as an engineer would write it with `PropsSI` and `scipy.optimize.fsolve`: the thing to compare with."""
+"""The same machine as an engineer would write it with `PropsSI` and `scipy.optimize.fsolve`, to compare with."""
 
 from __future__ import annotations
 
@@ -22,7 +22,7 @@ def name_for(fluid: Refrigerant) -> str:
 
 @dataclass(frozen=True)
 class Answer:
-    """What is compared: the refrigerant temperatures that drive the coils and the discharge in K, heat and power in W."""
+    """What is compared: temperatures that drive the coils and at the discharge in K, heat and power in W."""
 
     source_drive: float
     sink_drive: float
@@ -45,7 +45,7 @@ class Plain:
         return float(PropsSI(what, a, x, b, y, self.name))
 
     def cycle(self, evaporating: float, condensing: float) -> tuple[float, float, float, float, float, float, float]:
-        """Heat taken, heat given, power, discharge enthalpy and pressure, and the temperatures that drive both coils."""
+        """Heat taken, heat given, power, discharge enthalpy and pressure, temperatures that drive both coils."""
         m, get, compressor = self.m, self.get, self.m.compressor
         assert isinstance(compressor, Compressor)
         low = get("P", "T", evaporating, "Q", 1)

@@ -1,4 +1,4 @@
-"""One operating point: against `PropsSI` with `fsolve`, and against the bare calls of the equation of state it makes."""
+"""One operating point: against `PropsSI` with `fsolve`, and against the bare calls that it makes."""
 
 from __future__ import annotations
 
@@ -15,7 +15,7 @@ SOURCE, SINK = 2.0, 28.0
 
 
 def bare(fluid: Refrigerant, count: int) -> None:
-    """So many updates at (density, temperature) in the gas, each with the pressure, h, s, cv and two derivatives read."""
+    """So many updates at (density, temperature) in the gas, with p, h, s, cv and two derivatives read."""
     local = fluid._equation._local
     state, inputs, by_rho, by_T = local.state, local.inputs, local.by_rho, local.by_T
     rho, T = 0.8 * fluid.dew(290.0).rho, 290.0
@@ -80,9 +80,7 @@ def against_bare(name: str, repetitions: int) -> Row:
     before = fluid.calls
     ours.operate(at)
     count = fluid.calls - before
-    times = interleaved(
-        {"ours": (lambda: ours.operate(at), 10), "bare": (lambda: bare(fluid, count), 10)}, repetitions
-    )
+    times = interleaved({"ours": (lambda: ours.operate(at), 10), "bare": (lambda: bare(fluid, count), 10)}, repetitions)
     ratio = times["ours"] / times["bare"]
     return Row(
         f"operating point of {name} over its {count} bare calls",
