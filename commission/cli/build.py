@@ -21,7 +21,7 @@ def command(plant: Path, out: Path | None, serve: bool, strict: bool, no_cache: 
 
     folder = out or plant / "manual"
     cache = None if no_cache else _cache_folder()
-    result = build(plant, folder, progress=say, cache=cache)
+    result = build(plant, folder, progress=say, cache=cache, strict=strict)
     click.echo(str(result.first_page))
     if serve:
         from commission.cli.serve import serve_manual
