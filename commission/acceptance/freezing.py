@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 from commission.acceptance.budget import Measured
 from commission.acceptance.capability import capability
 from commission.acceptance.choosing import choose_instrument
+from commission.acceptance.conditions import known_to
 from commission.acceptance.grid import Axis, interpolate, middles, points
 from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
 from commission.acceptance.instruments import Reading, measure
@@ -164,7 +165,7 @@ def _guarantee_targets(
     between: Sequence[Mapping[str, float]],
     centre: Mapping[str, float],
 ) -> list[Target]:
-    from commission.prediction.building import boundary
+    from commission.prediction import boundary
 
     system = loaded.system(model.system_id)
     held = {k: v for k, v in model.rated_condition.items() if k not in {a.key for a in axes}}
@@ -194,7 +195,7 @@ def _carrier(
     terms: Terms, model: SystemModel, loaded: LoadedPlant, held: Mapping[str, float]
 ) -> Callable[[Mapping[str, float]], Carried]:
     points_of_supplier = loaded.system(model.system_id).rated_points
-    known = all(k in model.condition_axes for k in terms.at)
+    known = all(known_to(model, k) for k in terms.at)
     there = model.predict(dict(terms.at)) if known else None
 
     def at(point: Mapping[str, float]) -> Carried:

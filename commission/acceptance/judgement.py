@@ -173,7 +173,7 @@ def withheld_by(contradictions: Iterable[Impossible], still: Iterable[Steadiness
 def _verdicts(
     loaded: LoadedPlant, model: SystemModel, found: Evaluation, sheet: TestSheet | None, withheld: str | None
 ) -> list[GuaranteeVerdict]:
-    from commission.prediction.building import boundary
+    from commission.prediction import boundary
 
     if sheet is not None:
         return [
@@ -185,7 +185,7 @@ def _verdicts(
     counted = boundary(model.facts)
     return [
         verdict(
-            terms, found, partial(carry, terms, found.conditions, model, system.rated_points),
+            terms, found, partial(carry, terms, found.all_read, model, system.rated_points),
             withheld or boundary_differs(terms, counted),
         )
         for terms in map(terms_of, system.guarantee)

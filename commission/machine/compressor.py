@@ -40,7 +40,12 @@ class EfficiencyShape:
         """Overall isentropic efficiency at `ratio`, before the level.
 
         `work` is the isentropic work over p1 v1 (no unit) and `exponent` the mean isentropic exponent of p and v.
+
+        Raises:
+            NotCalculatedError: no compressor of this shape delivers gas at that ratio.
         """
+        if not (self.volumetric(ratio) > 0 and work > 0 and self.leakage * (ratio - 1) < 1):
+            raise NotCalculatedError(f"at a pressure ratio of {ratio:.1f} all the gas leaks back inside the compressor")
         losses = (self.loss_suction + self.loss_discharge * ratio) / (self.volumetric(ratio) * work)
         recompressed = 1 / (1 - self.leakage * (ratio - 1))
         return 1 / (self._inside(ratio, exponent) * recompressed + losses)
@@ -49,6 +54,10 @@ class EfficiencyShape:
         """Work inside a compressor of fixed built-in volume ratio over isentropic work, at least 1."""
         if self.built_in_volume_ratio is None:
             return 1.0
+        if self.built_in_volume_ratio < 1:
+            raise NotCalculatedError(
+                f"a compressor with a built-in volume ratio of {self.built_in_volume_ratio:.2f} would not compress"
+            )
         inner = math.exp(k * math.log(self.built_in_volume_ratio))
         return (_work_number(inner, k) + (ratio - inner) / self.built_in_volume_ratio) / _work_number(ratio, k)
 
@@ -118,6 +127,8 @@ class Compressor:
             raise NotCalculatedError(f"the compressor would have to work at a pressure ratio of {ratio:.2f}")
         end = refrigerant.isentropic_end(suction, pressure, near)
         work = end.h - suction.h
+        if not (work > 0 and end.rho > suction.rho):
+            raise NotCalculatedError(f"at a pressure ratio of {ratio:.4f} there is nothing to compress")
         exponent = math.log(ratio) / math.log(end.rho / suction.rho)
         volumetric = self.volumetric_level * self.shape.volumetric(ratio)
         if volumetric <= 0:
@@ -125,6 +136,8 @@ class Compressor:
         flow = volumetric * self.displacement * speed_share * suction.rho
         level = self.isentropic_level * (1 - 2 * self.speed_loss * (1 - speed_share))
         isentropic = level * self.shape.isentropic(ratio, work * suction.rho / suction.p, exponent)
+        if not (isentropic > 0 and self.leak < 1):
+            raise NotCalculatedError(f"at {100 * speed_share:.0f} % of its speed the compressor delivers no gas")
         power = flow * work / isentropic
         loss = self.shell_loss * power
         flow *= 1 - self.leak

@@ -15,6 +15,9 @@ from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
 from commission.machine.wet_air import coil_conductance, coil_heat
 
+MOST_UNITS = 50.0
+"""Transfer units beyond which the inlet of a medium cannot be told from its outlet: e^-50 of the difference is left."""
+
 Flow = Literal["counterflow", "parallel", "crossflow unmixed"]
 
 
@@ -100,8 +103,17 @@ class Exchanger:
         """Heat in W for each kelvin between the known temperature of the medium and the refrigerant.
 
         The shares scale flow and surface. With the outlet known, C e (T_in - T_r) = C e/(1 - e) (T_out - T_r).
+
+        Raises:
+            NotCalculatedError: a medium known by its outlet has a flow too small for its inlet to be told.
         """
         rate = flow_share * stream.capacity_rate
-        conductance = surface_share * self.conductance_at(flow_share * stream.volume_flow)
-        share = effectiveness(conductance / rate)
-        return rate * math.expm1(conductance / rate) if stream.by_outlet else rate * share
+        units = surface_share * self.conductance_at(flow_share * stream.volume_flow) / rate
+        if not stream.by_outlet:
+            return rate * effectiveness(units)
+        if units > MOST_UNITS:
+            raise NotCalculatedError(
+                f"a flow of {3600 * flow_share * stream.volume_flow:.3g} m3/h is far too small for the exchanger: with "
+                "its outlet temperature fixed there is no inlet temperature that could be"
+            )
+        return rate * math.expm1(units)

@@ -15,7 +15,7 @@ Residuals = Callable[[Sequence[float]], Sequence[float]]
 
 
 class NoSolutionError(NotCalculatedError):
-    """The balance was not reached; the message says how far it got."""
+    """The balance was not reached; the message says what closed the way."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,7 +56,7 @@ def solve(
     fresh = False
     while max(abs(v) for v in r) > tolerance:
         if count >= evaluations:
-            raise NoSolutionError(f"no balance was found in {count} trials; the last one misses by {_worst(r):.2g}")
+            raise NoSolutionError("no balance was found: heat and flow do not come together at any condition tried")
         if matrix is None:
             matrix = _differences(residuals, x, r, difference)
             count += len(x)
@@ -67,8 +67,8 @@ def solve(
         count += moved[3] if moved else 6
         if moved is None:
             if fresh:
-                why = f"; the way on is closed: {refused[-1]}" if refused else ""
-                raise NoSolutionError(f"no balance was found{why} (the best trial misses by {_worst(r):.2g})")
+                why = f", and beyond it: {refused[-1]}" if refused else ""
+                raise NoSolutionError(f"no balance was found: heat and flow do not come together on the way{why}")
             matrix = None
             continue
         x_new, r_new, taken, _ = moved

@@ -1,5 +1,6 @@
 """A description becomes a fitted model; the model says what each gauge, probe and meter should read."""
 
+from commission.prediction.building import boundary
 from commission.prediction.conditions import ConditionAxis
 from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Prediction, SystemModel, fit
@@ -11,6 +12,7 @@ __all__ = [
     "Prediction",
     "SaturationRow",
     "SystemModel",
+    "boundary",
     "fit",
     "heat_up",
     "saturation_table",

@@ -177,7 +177,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     stated_superheat = system.expansion.superheat if system.expansion else None
     superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
     line, surroundings = suction_line(facts, a, rated, superheat)
-    compressor = compressor_of(facts, a, levels.swept_flow, levels.isentropic)
+    compressor = compressor_of(facts, a, levels.swept_flow, levels.isentropic, rated.speed)
     exponent = a["air_side_exponent"]
     evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a))
     condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)

@@ -31,10 +31,15 @@ def displacement_of(facts: Facts) -> float | None:
 
 
 def compressor_of(
-    facts: Facts, a: Mapping[str, float], swept_flow: float, isentropic: float
+    facts: Facts, a: Mapping[str, float], swept_flow: float, isentropic: float, speed: float | None = None
 ) -> Compressor | PolynomialCompressor:
-    """The compressor at fitted levels: swept flow (or flow factor of the polynomials) and isentropic level."""
+    """The compressor at fitted levels: swept flow (or flow factor of the polynomials) and isentropic level.
+
+    They belong to `speed` (1/s), that of the reference point; the displacement is stated at the nominal speed.
+    """
     displacement = displacement_of(facts)
+    if displacement is not None and speed and facts.system.compressor.nominal_speed:
+        displacement *= speed / facts.system.compressor.nominal_speed
     speed_loss = a["compressor_speed_loss"] if facts.system.compressor.drive == "variable speed" else 0.0
     if facts.system.compressor.polynomial is not None:
         return _polynomial(facts, a, swept_flow, isentropic, speed_loss)

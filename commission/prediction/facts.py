@@ -75,7 +75,7 @@ class Facts:
 
 
 def facts_of(loaded: LoadedPlant, identity: str) -> Facts:
-    """The facts of one system.
+    """The facts of one system; its refrigerant carries the figures that the plant states in the register's place.
 
     Raises:
         InputError: no such system, or a refrigerant that is not known.
@@ -84,9 +84,11 @@ def facts_of(loaded: LoadedPlant, identity: str) -> Facts:
     media = []
     for side in (system.heat_source, system.heat_sink):
         media.append(None if side.medium == "air" else liquid(side.medium, side.mass_fraction or 0.0))
-    return Facts(
-        loaded, identity, system, refrigerant(system.refrigerant), loaded.assumptions(identity), media[0], media[1]
-    )
+    fluid = refrigerant(system.refrigerant)
+    entry = loaded.register[fluid.name]
+    if entry != fluid.register:
+        fluid = fluid.with_register(entry)
+    return Facts(loaded, identity, system, fluid, loaded.assumptions(identity), media[0], media[1])
 
 
 def left_out(facts: Facts) -> tuple[str, ...]:

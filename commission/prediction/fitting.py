@@ -31,7 +31,8 @@ SCATTER = "scatter of rated points"
 class Variant:
     """A machine refitted with one cause moved by one standard uncertainty.
 
-    `sign` is -1 where the cause was moved down because its range ends at its value; effects are given per +1.
+    `sign` is -1 where the cause was moved down, because its range ends at its value or no machine is left above;
+    effects are given per +1.
     """
 
     cause: str
@@ -93,8 +94,17 @@ def _exact(
             store[:] = [_level_jacobian(problem, a, logs, gaps, points)]
         step = np.linalg.lstsq(store[0], -gaps, rcond=None)[0]
         step *= min(1.0, 0.4 / max(float(np.abs(step).max()), 1e-12))
-        logs[free] += step
-        gaps, plan, points = gaps_of(problem, a, Levels.from_logs(tuple(logs)), points)
+        for halving in range(6):
+            tried = logs.copy()
+            tried[free] += step * 0.5**halving
+            try:
+                gaps, plan, points = gaps_of(problem, a, Levels.from_logs(tuple(tried)), points)
+            except NotCalculatedError:
+                if halving == 5:
+                    raise
+                continue
+            logs = tried
+            break
     worst = _names(problem)[int(np.abs(gaps).argmax())]
     raise NotCalculatedError(f"no machine of this kind reproduces the rated point: {worst} cannot be reached")
 
@@ -111,11 +121,11 @@ def _level_jacobian(
         moved = logs.copy()
         moved[n] += 2e-3
         columns.append((gaps_of(problem, a, Levels.from_logs(tuple(moved)), starts)[0] - gaps) / 2e-3)
+    if not all(float(np.abs(column).max()) > 0 for column in columns):
+        raise NotCalculatedError(
+            "what is stated does not move one of the unknowns of the machine, so that it stays open"
+        )
     return np.column_stack(columns)
-
-
-def _moved(facts: Facts, values: Mapping[str, float], key: str) -> dict[str, float]:
-    return {**values, key: values[key] + move(facts.assumptions[key])}
 
 
 def _uncertain(facts: Facts, used: Used) -> list[str]:
@@ -125,15 +135,20 @@ def _uncertain(facts: Facts, used: Used) -> list[str]:
 def _exact_variants(problem: Problem, values: Used, levels: Levels, points: tuple[Seen, ...]) -> tuple[Variant, ...]:
     variants, store = [], list[Array]()
     for key in _uncertain(problem.facts, values):
-        a = _moved(problem.facts, values.plain(), key)
-        try:
-            _, plan, _ = _exact(problem, a, levels, store, points)
-        except NotCalculatedError as error:
+        assumption = problem.facts.assumptions[key]
+        for side in (1.0, -1.0):
+            a = {**values.plain(), key: assumption.value + side * move(assumption)}
+            try:
+                _, plan, _ = _exact(problem, a, levels, store, points)
+            except NotCalculatedError as error:
+                refused = error
+                continue
+            variants.append(Variant(key, plan, side * math.copysign(1.0, move(assumption))))
+            break
+        else:
             raise NotCalculatedError(
-                f"with the assumption {key} at {a[key]:.4g} instead of {values[key]:.4g} (within its range) the rated "
-                f"point cannot be: {error}"
+                f"within the range of the assumption '{assumption.title}' the rated point cannot be: {refused}"
             ) from None
-        variants.append(Variant(key, plan, math.copysign(1.0, move(problem.facts.assumptions[key]))))
     return tuple(variants)
 
 
@@ -170,7 +185,13 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     stated = np.array([d.assumption is None for c in problem.cases for d in c.data])
     dof = len(stated) - len(problem.free)
     chi = math.sqrt(float((gaps[: len(stated)][stated] ** 2).sum()) / dof)
-    inverse: Array = np.asarray(np.linalg.inv(matrix.T @ matrix), dtype=np.float64)
+    try:
+        inverse: Array = np.asarray(np.linalg.inv(matrix.T @ matrix), dtype=np.float64)
+    except np.linalg.LinAlgError:
+        raise NotCalculatedError(
+            "the rated points do not tell the sizes of compressor, condenser and evaporator apart: state a rated point "
+            "at another condition, or the rating of an exchanger"
+        ) from None
     variants = []
     for n, key in enumerate(problem.loose):
         sign = math.copysign(1.0, move(problem.facts.assumptions[key]))

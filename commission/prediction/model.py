@@ -15,6 +15,7 @@ from commission.prediction.expected import Found, beats_carnot, expected_values,
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
 from commission.prediction.fitting import SCATTER, Fit, fit_system
+from commission.prediction.guard import in_words
 from commission.prediction.rated import reference
 from commission.properties import Refrigerant
 from commission.quantities import NOMENCLATURE, Display, Explained, Input, Kind
@@ -94,25 +95,39 @@ class SystemModel:
                 found.append(error)
         return tuple(found)
 
+    @in_words
     def sensitivities(self, conditions: Mapping[str, float] | None = None) -> dict[str, dict[str, float]]:
         """Change of each expected quantity per unit of each condition, SI, by central differences.
 
-        At the edge of a regime (head pressure just held) the two sides differ; the mean of both is given.
+        At the edge of a regime (head pressure just held) the two sides differ; the mean of both is given. At the edge
+        of what can be calculated the difference to the one side that can be is given.
 
         Raises:
             InputError, NotCalculatedError: as `predict`.
         """
         whole, _, _ = self._complete(conditions)
-        _, start = self._values(self.fit.plan, whole, None)
+        at, start = self._values(self.fit.plan, whole, None)
         table: dict[str, dict[str, float]] = {}
         for key in whole:
             step = 0.1 if NOMINAL_STEP.get(key, 0.0) == 0.0 else NOMINAL_STEP[key] * whole[key]
-            low, _ = self._values(self.fit.plan, {**whole, key: whole[key] - step}, start)
-            high, _ = self._values(self.fit.plan, {**whole, key: whole[key] + step}, start)
+            low, below = self._beside(whole, key, -step, at, start)
+            high, above = self._beside(whole, key, step, at, start)
+            if below == above:
+                raise NotCalculatedError("this condition stands alone: on neither side of it there is a balance")
             for name in low.values.keys() & high.values.keys():
-                table.setdefault(name, {})[key] = (high.values[name] - low.values[name]) / (2 * step)
+                table.setdefault(name, {})[key] = (high.values[name] - low.values[name]) / (above - below)
         return table
 
+    def _beside(
+        self, whole: Mapping[str, float], key: str, step: float, at: Found, start: OperatingPoint
+    ) -> tuple[Found, float]:
+        """Values one step of a condition away, and that step; those of the condition itself where there are none."""
+        try:
+            return self._values(self.fit.plan, {**whole, key: whole[key] + step}, start)[0], step
+        except NotCalculatedError:
+            return at, 0.0
+
+    @in_words
     def assumption_effects(self, conditions: Mapping[str, float] | None = None) -> dict[str, dict[str, float]]:
         """Change of each expected quantity per +1 standard uncertainty of each assumption in use, refit included.
 
@@ -127,6 +142,7 @@ class SystemModel:
                 effects[cause] = change
         return effects
 
+    @in_words
     def infer(self, condition: str, key: str, reading: float, conditions: Mapping[str, float] | None = None) -> float:
         """The condition (such as a speed nobody can read) at which the expected value of `key` is `reading`, SI.
 
@@ -213,6 +229,7 @@ class SystemModel:
     def _title(self, cause: str) -> str:
         return f"the assumption '{self.assumptions[cause].title}'" if cause in self.assumptions else f"the {cause}"
 
+    @in_words
     def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
         whole, filled, outside = self._complete(conditions)
         try:
@@ -227,7 +244,7 @@ class SystemModel:
                     _add_part(parts[key], cause, amount)
         self._own_parts(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
-        warnings = [*outside, *point.warnings, *self.left_out]
+        warnings = [*outside, *point.warnings, *self.refrigerant.warnings, *self.left_out]
         if frosts(self.facts, point):
             warnings.append(
                 "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
@@ -242,7 +259,7 @@ class SystemModel:
             expected,
             nominal.reasons,
             point.states,
-            tuple(warnings),
+            tuple(dict.fromkeys(warnings)),
             parts,
         )
 
@@ -276,6 +293,7 @@ NOMINAL_STEP = {
 """Relative step of the central differences; temperatures take 0.1 K."""
 
 
+@in_words
 def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
     """Fit one system of a plant to what its supplier states.
 

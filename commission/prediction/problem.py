@@ -56,7 +56,7 @@ def prepare(facts: Facts, a: Mapping[str, float]) -> tuple[Problem, Levels]:
     evaporator = _evaporator(facts, a, rated, case)
     condenser = condenser_conductance(facts, a, rated.sink_flow)
     published = facts.system.compressor.polynomial is not None and not any(c.data for c in cases)
-    missing = _missing(facts, cases, case, evaporator is None, condenser is None, published)
+    missing = _missing(facts, cases, rated, case, evaporator is None, condenser is None, published)
     cases[middle] = with_data(case, tuple(missing))
     problem = Problem(facts, tuple(cases), middle, published, evaporator is not None, condenser is not None, ())
     return problem, _start(problem, a, rated)
@@ -73,7 +73,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
 
 
 def _missing(
-    facts: Facts, cases: Sequence[Case], case: Case, evaporator: bool, condenser: bool, published: bool
+    facts: Facts, cases: Sequence[Case], rated: Rated, case: Case, evaporator: bool, condenser: bool, published: bool
 ) -> list[Datum]:
     """Assumptions that stand in for data that nobody states, at the reference case."""
     stated = {d.of for c in cases for d in c.data}
@@ -87,7 +87,7 @@ def _missing(
     if evaporator and "evaporating_temperature" not in stated:
         assume("source_minus_evaporating", "source_minus_evaporating")
     if condenser and "condensing_temperature" not in stated:
-        assume(*sink_difference(facts, case))
+        assume(*sink_difference(facts, case, rated))
     if published:
         return extra
     if not {"power_input", "compressor_power"} & stated and not {"cooling_capacity", "heating_capacity"} <= stated:
@@ -118,6 +118,11 @@ def _start(problem: Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     if problem.fixed_compressor:
         heat = source + compression.power
         return Levels(1.0, 1.0, *_conductances(problem, a, rated, evaporating, condensing, heat))
+    if source <= 0:
+        raise NotCalculatedError(
+            f"between {evaporating - 273.15:.1f} °C evaporating and {condensing - 273.15:.1f} °C condensing "
+            f"{facts.fluid.name} takes up no heat: the temperatures at {case.origin} are not for this refrigerant"
+        )
     swept = rated.source_heat / source
     power = given.get("power_input")
     if power is None and "cooling_capacity" not in given and "heating_capacity" not in given:
@@ -178,10 +183,14 @@ def _dew_points(
         evaporating += 0.35 * _glide(facts, evaporating)
     condensing = given.get("condensing_temperature")
     if condensing is None:
-        of, key = sink_difference(facts, case)
+        of, key = sink_difference(facts, case, rated)
         difference = 12.0 if problem.fixed_condenser else assumed(of, key)
-        outlet = case.conditions["heat_sink_outlet_temperature"] if of == LIFTED else rated.sink_temperature
-        condensing = outlet + difference
+        end = rated.sink_temperature
+        if of == LIFTED and once_through(facts, case.conditions):
+            end = case.conditions["heat_sink_outlet_temperature"]
+        elif of == LIFTED:
+            end += known_rise(facts, case, rated) or 0.0
+        condensing = end + difference
         condensing += 0.5 * _glide(facts, condensing)
     return evaporating, condensing
 
@@ -189,16 +198,31 @@ def _dew_points(
 LIFTED = "condensing_minus_sink_outlet"
 
 
-def sink_difference(facts: Facts, case: Case) -> tuple[str, str]:
+LARGE_RISE = 5.5
+"""Rise of a liquid in K, known from its flow, above which its condenser is sized by the outlet: the assumed difference
+to the inlet (5 to 10 K) belongs to a rise of about 5 K and could be smaller than the rise itself."""
+
+
+def sink_difference(facts: Facts, case: Case, rated: Rated) -> tuple[str, str]:
     """What sizes a condenser or a gas cooler of which nothing is stated: the datum, and the key of its assumption.
 
-    Water that is heated in one pass comes near the condensing temperature at its outlet, whatever its inlet.
+    Water that rises much (in one pass, or by a small stated flow) comes near the condensing temperature at its outlet,
+    whatever its inlet.
     """
     if facts.transcritical:
         return "condensing_minus_sink_inlet", "gas_cooler_approach"
-    if once_through(facts, case.conditions):
+    if once_through(facts, case.conditions) or (known_rise(facts, case, rated) or 0.0) > LARGE_RISE:
         return LIFTED, LIFTED
     return "condensing_minus_sink_inlet", "condensing_minus_sink_inlet"
+
+
+def known_rise(facts: Facts, case: Case, rated: Rated) -> float | None:
+    """Temperature rise in K of a liquid sink at the reference point, where its flow is known; else None."""
+    stated = case.conditions.get("heat_sink_flow", facts.system.heat_sink.flow)
+    if facts.sink_liquid is None or stated is None:
+        return None
+    medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    return rated.sink_heat / medium.capacity_rate
 
 
 def _glide(facts: Facts, temperature: float) -> float:

@@ -9,6 +9,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from commission.description import Assumption
+from commission.errors import NotCalculatedError
 from commission.prediction.building import Levels, Plan
 from commission.prediction.problem import Problem, plan_of
 from commission.prediction.simulating import Seen, observed, simulate
@@ -78,10 +79,9 @@ class Table:
             columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
             moved = 0.0
             for _ in range(4):
-                step = np.linalg.lstsq(matrix, -gaps, rcond=None)[0]
+                step: Array = np.asarray(np.linalg.lstsq(matrix, -gaps, rcond=None)[0], dtype=np.float64)
                 step *= min(1.0, 0.7 / max(float(np.abs(step).max()), 1e-12))
-                x = x + step
-                gaps, plan, points = self.gaps(x, points)
+                x, gaps, plan, points = self._step(x, step, gaps, points)
                 moved = max(moved, float(np.abs(step).max()))
                 if float(np.abs(step).max()) < 1e-3:
                     break
@@ -89,20 +89,47 @@ class Table:
                 break
         return x, gaps, plan, points, matrix
 
+    def _step(
+        self, x: Array, step: Array, gaps: Array, points: Sequence[Seen]
+    ) -> tuple[Array, Array, Plan, tuple[Seen, ...]]:
+        """The step, halved while the machine cannot be calculated there or the sum of squares grows beyond doubling.
+
+        Raises:
+            NotCalculatedError: even a small step leads where no balance is.
+        """
+        refused: NotCalculatedError | None = None
+        for trial in range(6):
+            try:
+                found = self.gaps(x + step * 0.5**trial, points)
+            except NotCalculatedError as error:
+                refused = error
+                continue
+            if float(found[0] @ found[0]) < 2 * float(gaps @ gaps) + 1.0:
+                return x + step * 0.5**trial, *found
+        if refused is not None:
+            raise refused
+        raise NotCalculatedError("the rated points contradict each other: no machine comes near all of them")
+
     def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Seen], columns: Sequence[int]) -> Array:
         """By differences; `columns` are the unknowns that move a datum, the others are priors alone."""
         matrix = np.zeros((len(gaps), len(x)))
         for n in range(len(x)):
             step = 2e-3 if n < len(self.problem.free) else 0.05
             if n in columns:
-                moved = x.copy()
-                moved[n] += step
-                matrix[:, n] = (self.gaps(moved, starts)[0] - gaps) / step
+                try:
+                    matrix[:, n] = self._column(x, n, step, gaps, starts)
+                except NotCalculatedError:
+                    matrix[:, n] = self._column(x, n, -step, gaps, starts)
                 if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() < 1e-6:
                     matrix[: len(gaps) - len(self.problem.loose), n] = 0.0
             else:
                 matrix[len(gaps) - len(x) + n, n] = 1.0
         return matrix
+
+    def _column(self, x: Array, n: int, step: float, gaps: Array, starts: Sequence[Seen]) -> Array:
+        moved = x.copy()
+        moved[n] += step
+        return (self.gaps(moved, starts)[0] - gaps) / step
 
 
 def scatter_directions(inverse: Array, rows: Array) -> list[Array]:
