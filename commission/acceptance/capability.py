@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 from commission.acceptance.budget import Budget, Measured
 from commission.acceptance.changes import Change, smallest_change
 from commission.acceptance.choosing import choose_instrument
+from commission.acceptance.conditions import HUMIDITY, WET, with_air
 from commission.acceptance.decision import Decision
 from commission.acceptance.evaluation import Evaluation, evaluate
 from commission.acceptance.guarantee import Terms, carry, terms_of
@@ -111,6 +112,7 @@ def _readings(
     """A reading for each value that an instrument of the plant can take, and the rest."""
     system, instruments = loaded.system(model.system_id), loaded.plant.instruments
     found, lacking = [], {}
+    values = _as_read(loaded, model, values)
     for key, value in values.items():
         name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
         if name is None:
@@ -118,6 +120,15 @@ def _readings(
         else:
             found.append(Reading(key, value, name))
     return found, lacking
+
+
+def _as_read(loaded: LoadedPlant, model: SystemModel, values: Mapping[str, float]) -> Mapping[str, float]:
+    """The condition with the wet bulb in place of the humidity, where `measured_with` names only that."""
+    named = loaded.system(model.system_id).measured_with
+    if WET not in named or HUMIDITY in named or HUMIDITY not in values:
+        return values
+    air = with_air({k: Measured(k, v) for k, v in values.items()}, (WET,), loaded.barometric_pressure)
+    return {k: m.value for k, m in air.items() if k != HUMIDITY or WET not in air}
 
 
 def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model: SystemModel) -> list[Reading]:
@@ -129,7 +140,7 @@ def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model
 
 def _guarantee(loaded: LoadedPlant, model: SystemModel, terms: Terms, found: Evaluation) -> GuaranteeCapability:
     points = loaded.system(model.system_id).rated_points
-    judged = verdict(terms, found, lambda: carry(terms, found.conditions, model, points))
+    judged = verdict(terms, found, lambda: carry(terms, found.all_read, model, points))
     decided = judged.outcome != "undecided"
     change = None
     if not decided and judged.decision is not None and judged.budget is not None:

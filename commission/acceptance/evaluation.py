@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Measured
 from commission.acceptance.closure import Closure, closures
+from commission.acceptance.conditions import day_condition, missing_temperature
 from commission.acceptance.derived import Derived, derive, less, ratio, unbalance
 from commission.acceptance.expectation import Deviation, Expectation, deviation, expect
 from commission.acceptance.impossible import Impossible, impossible
@@ -28,7 +29,7 @@ from commission.acceptance.routes import (
     liquid_side,
 )
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import NOMENCLATURE
 
 if TYPE_CHECKING:
     from commission.acceptance.sheet import TestSheet
@@ -63,6 +64,11 @@ class Evaluation:
     closures: tuple[Closure, ...]
     evaporator_fan: Measured | None
     prediction: Prediction | None = field(default=None, compare=False)
+
+    @property
+    def all_read(self) -> Mapping[str, Measured]:
+        """All readings and the conditions: a contract may state another end or bulb than the model asks for."""
+        return {**self.measured, **self.conditions}
 
     def capacity(self, key: str, route: str | None = None) -> RouteResult:
         """A capacity by the route that the contract names, or by the best that could be used.
@@ -122,8 +128,11 @@ def evaluate(
     not_judged: dict[str, str] = {}
     asked, read = list(conditions), list(readings)
     measured = _measure_all(loaded, [*asked, *read], on, not_judged)
-    used = {k: measured[k] for k in model.condition_axes if k in measured}
+    day = day_condition(model, measured)
+    used = dict(day.used)
+    not_judged.update(day.unused)
     warnings = list(dict.fromkeys(w for m in measured.values() for w in m.budget.warnings))
+    warnings += day.warnings
     prediction, why, spent = _predict(model, used, measured)
     not_judged.update(spent)
     warnings += [
@@ -134,7 +143,8 @@ def evaluate(
         warnings += prediction.warnings
         warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
     inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet, used)
-    derived = dict(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
+    derived = {k: Derived(used[k], e) for k, e in day.derived.items()}
+    derived.update(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
     derived.update(_unbalances(loaded, [*asked, *read], measured))
     have = {**measured, **{k: d.measured for k, d in derived.items()}}
     power = compressor_power(have, inputs.fans)
@@ -148,7 +158,7 @@ def evaluate(
         if k in have and k in expectations and k not in used and k not in spent
     )
     for key in have:
-        if key not in expectations and key not in used and key not in not_judged and key != "barometric_pressure":
+        if key not in expectations and key not in {*used, *day.spent, *not_judged, "barometric_pressure"}:
             not_judged[key] = (
                 why or (prediction.not_calculated.get(key) if prediction else None) or "nothing is expected of it"
             )
@@ -187,9 +197,9 @@ def _predict(
 
     A speed that was inferred is added to `used`.
     """
-    for key in model.condition_axes:
-        if NOMENCLATURE[key].kind is Kind.TEMPERATURE and key not in used:
-            return None, f"{NOMENCLATURE[key].label.lower()} was not read: without it nothing can be expected", {}
+    lacking = missing_temperature(model, used)
+    if lacking is not None:
+        return None, f"{NOMENCLATURE[lacking].label.lower()} was not read: without it nothing can be expected", {}
     spent: dict[str, str] = {}
     try:
         if SPEED in model.condition_axes and SPEED not in used:

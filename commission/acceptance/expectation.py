@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Budget, Component, Measured, combine
+from commission.acceptance.conditions import day_condition
 from commission.acceptance.decision import significant
 from commission.quantities import NOMENCLATURE, Explained, Input
 
@@ -74,15 +75,16 @@ def expect(
 ) -> Mapping[str, Expectation]:
     """Expected values at a measured condition, with everything that makes them uncertain.
 
-    `conditions` by nomenclature key; those that are no axis of the model are left out of account, and axes that
-    were not measured are taken at the rated condition (`Prediction.filled` lists them). The uncertainty of the
-    measured condition comes in through the sensitivities of the model, under the causes of the readings themselves, so
-    that a deviation of a reading that shares them keeps the correlation (JCGM 100, 5.2 and F.1.2.3).
+    `conditions` by nomenclature key; those that set no condition of the model are left out of account (a wet bulb and
+    the other end of a medium do, see `conditions.day_condition`), and axes that were not measured are taken at the
+    rated condition (`Prediction.filled` lists them). The uncertainty of the measured condition comes in through the
+    sensitivities of the model, under the causes of the readings themselves, so that a deviation of a reading that
+    shares them keeps the correlation (JCGM 100, 5.2 and F.1.2.3).
 
     Raises:
         NotCalculatedError: the model has no solution there.
     """
-    used = {k: m for k, m in conditions.items() if k in model.condition_axes}
+    used = dict(day_condition(model, conditions).used)
     values = {k: m.value for k, m in used.items()}
     prediction = model.predict(values)
     sensitivities = model.sensitivities(values)

@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
 from commission.acceptance.budget import Budget, Component, Measured, combine
+from commission.acceptance.conditions import day_condition, known_to, plain_in_model, with_air
 from commission.acceptance.decision import Rule
 from commission.acceptance.expectation import model_component
 from commission.acceptance.grid import Axis, interpolate, points
@@ -132,7 +133,7 @@ def carry(
     if terms.carried_by == "design model":
         return by_model(terms, conditions, model, there)
     if terms.carried_by == "supplier's table":
-        return by_table(terms, conditions, rated_points)
+        return by_table(terms, conditions, rated_points, model.facts.pressure)
     return as_stated(terms, conditions, model)
 
 
@@ -144,11 +145,11 @@ def by_model(
     Each part of the model uncertainty counts with the difference of its relative effects at the two conditions: what
     moves both alike moves the ratio not at all.
     """
-    used = {k: m for k, m in conditions.items() if k in model.condition_axes}
+    used = dict(day_condition(model, conditions).used)
     day_values = {k: m.value for k, m in used.items()}
     key = terms.quantity
     for condition in terms.at:
-        if condition not in model.condition_axes:
+        if not known_to(model, condition):
             label = NOMENCLATURE[condition].label.lower()
             raise NotCalculatedError(f"the design model does not depend on {label}, which the guarantee states")
     there = there or model.predict(dict(terms.at))
@@ -172,14 +173,20 @@ def by_model(
                     Kind.NUMBER, "calculated"))  # fmt: skip
 
 
-def by_table(terms: Terms, conditions: Mapping[str, Measured], rated_points: Sequence[RatedPoint]) -> Carried:
+def by_table(
+    terms: Terms, conditions: Mapping[str, Measured], rated_points: Sequence[RatedPoint], pressure: float = 101325.0
+) -> Carried:
     """The guaranteed value times the ratio of the supplier's table at the day's and at the guarantee's condition.
 
     The table is that of the rated points which state the quantity; it must be a full grid over the conditions that vary
     in it and is read linearly along each. What lies between its points is the supplier's own: no uncertainty is added.
+    A table by wet bulb is read by the humidity of the day and the other way round, at barometric `pressure` (Pa).
     """
     axes, values = supplier_grid(terms.quantity, rated_points)
-    base, _ = interpolate(axes, values, terms.at)
+    keys = [a.key for a in axes]
+    stated = with_air({k: Measured(k, v) for k, v in terms.at.items()}, keys, pressure)
+    conditions = with_air(conditions, keys, pressure)
+    base, _ = interpolate(axes, values, {k: m.value for k, m in stated.items()})
     now, slopes = interpolate(axes, values, {k: m.value for k, m in conditions.items()})
     value = terms.value * now / base
     used = {a.key: conditions[a.key] for a in axes}
@@ -234,6 +241,7 @@ def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemMod
     of the difference may do comes into the budget through the sensitivities of the model.
     """
     used = {}
+    conditions = with_air(conditions, terms.at, model.facts.pressure)
     for key, wanted in terms.at.items():
         label = NOMENCLATURE[key].label.lower()
         if key not in conditions:
@@ -243,14 +251,15 @@ def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemMod
         if abs(conditions[key].value - wanted) > near:
             raise NotCalculatedError(f"the guarantee holds only as stated, and the {label} of the day is another one")
         used[key] = conditions[key]
-    slopes = model.sensitivities({k: m.value for k, m in used.items() if k in model.condition_axes})
+    asked, wanted_there = day_condition(model, used).used, plain_in_model(model, terms.at)
+    slopes = model.sensitivities({k: m.value for k, m in asked.items()}).get(terms.quantity, {})
     through = []
-    for key, measured in used.items():
-        slope = slopes.get(terms.quantity, {}).get(key, 0.0)
+    for key, measured in asked.items():
+        slope = slopes.get(key, 0.0)
         if slope:
             off = Component(
                 f"{NOMENCLATURE[key].label.lower()} not quite as stated",
-                slope * (measured.value - terms.at[key]) / math.sqrt(3.0), "rectangular",
+                slope * (measured.value - wanted_there[key]) / math.sqrt(3.0), "rectangular",
                 source="difference of the day from the stated condition times the sensitivity of the model", of=key,
                 remedy="test nearer to the condition of the guarantee",
             )  # fmt: skip
