@@ -17,9 +17,9 @@ import numpy as np
 
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
-from commission.properties import saturated_air, saturated_air_at_enthalpy
+from commission.properties import MoistAir, saturated_air, saturated_air_at_enthalpy
 from commission.properties.lines import Array
-from commission.properties.psychrometrics import saturated_air_rows
+from commission.properties.psychrometrics import COLDEST, HOTTEST, saturated_air_rows
 
 LATENT = 2.501e6
 """Latent heat of water at 0 °C in J/kg (ASHRAE Handbook Fundamentals 2017, ch. 1, eq. 30)."""
@@ -115,14 +115,35 @@ def leaving_air(stream: Stream, heat: float, refrigerant: float, conductance: fl
         return LeavingAir(dry, air.W, 1.0, 0.0)
     fusion = FUSION * _ice(refrigerant)
     wanted = air.h + fusion * air.W - heat / stream.mass_flow / (1 - bypass)
-    surface = saturated_air_at_enthalpy(wanted, air.p)
-    if fusion:
-        T = _root(lambda t: _potential(t, air.p, fusion) - wanted, surface.T - 8.0, surface.T + 8.0)
-        surface = saturated_air(T, air.p)
+    surface = _surface(wanted, air.p, fusion, air.dew_point)
     W = surface.W + (air.W - surface.W) * bypass
     condensate = stream.mass_flow * (air.W - W)
     sensible = 1 - condensate * (LATENT + fusion) / heat
     return LeavingAir(surface.T + (stream.temperature - surface.T) * bypass, W, sensible, condensate)
+
+
+def _surface(wanted: float, p: float, fusion: float, start: float) -> MoistAir:
+    """Saturated air at `p` (Pa) whose enthalpy, with the heat of `fusion` (J/kg) of its water, is `wanted` (J/kg).
+
+    Newton's method with the slope of the saturation pressure of one hundredth of a kelvin; enthalpy rises with
+    temperature and ever faster, so that it ends. Where it would leave the range of moist air a bracket is halved.
+
+    Raises:
+        NotCalculatedError: no saturated air has so little.
+    """
+    T = start
+    for _ in range(30):
+        if not COLDEST < T - 0.01 < T < HOTTEST:
+            break
+        air, below = saturated_air(T, p), saturated_air(T - 0.01, p)
+        miss = wanted - air.h - fusion * air.W
+        step = 0.01 * miss / (air.h - below.h + fusion * (air.W - below.W))
+        T += step
+        if abs(step) < 1e-9:
+            return saturated_air(T, p)
+    low, high = COLDEST, saturated_air_at_enthalpy(max(wanted, 0.0) + 1e3, p).T
+    T = _root(lambda t: _potential(t, p, fusion) - wanted, low, high)
+    return saturated_air(T, p)
 
 
 def _potential(T: float, p: float, fusion: float) -> float:
