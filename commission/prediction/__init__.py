@@ -5,6 +5,7 @@ from commission.prediction.conditions import ConditionAxis
 from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Prediction, SystemModel, fit
 from commission.prediction.saturation import SaturationRow, saturation_table
+from commission.prediction.surface import operating_surface
 
 __all__ = [
     "ConditionAxis",
@@ -15,5 +16,6 @@ __all__ = [
     "boundary",
     "fit",
     "heat_up",
+    "operating_surface",
     "saturation_table",
 ]
