@@ -168,7 +168,8 @@ def _warnings(file: RecordFile, readings: Mapping[str, Any], unanswered: tuple[s
     """What is not wrong but weakens the record, as sentences."""
     found = []
     if file.mode == "test" and unanswered:
-        found.append(f"{len(unanswered)} items of this stage have no answer: {', '.join(unanswered)}")
+        noun = "item of this stage has" if len(unanswered) == 1 else "items of this stage have"
+        found.append(f"{len(unanswered)} {noun} no answer: {', '.join(unanswered)}")
     if readings and file.since_start is None:
         found.append("the running time since the last start is not written: nobody can say later that it was steady")
     return found
