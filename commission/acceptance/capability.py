@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Budget, Measured
 from commission.acceptance.changes import Change, smallest_change
-from commission.acceptance.choosing import choose_instrument
+from commission.acceptance.choosing import cannot_be_read, choose_instrument
 from commission.acceptance.conditions import HUMIDITY, WET, with_air
 from commission.acceptance.decision import Decision
 from commission.acceptance.evaluation import Evaluation, evaluate
@@ -114,6 +114,10 @@ def _readings(
     found, lacking = [], {}
     values = _as_read(loaded, model, values)
     for key, value in values.items():
+        closed = cannot_be_read(key, system)
+        if closed is not None:
+            lacking[key] = closed
+            continue
         name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
         if name is None:
             lacking[key] = f"no instrument of the plant reads {NOMENCLATURE[key].label.lower()}: {why}"

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 
 from commission.acceptance.instruments import instrument_budget
-from commission.description.model import Instrument
+from commission.description.model import Instrument, System
 from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Kind, Reference
 
@@ -26,6 +26,37 @@ DIRECT = (
     "barometric_pressure",
 )
 """Quantities that one instrument shows by itself; all others are made of these, or need `measured_with` to say how."""
+
+
+PRESSURES = ("suction_pressure", "discharge_pressure")
+FROM_PRESSURES = (
+    "evaporating_temperature",
+    "mean_evaporating_temperature",
+    "condensing_temperature",
+    "superheat",
+    "compressor_superheat",
+    "subcooling",
+    "pressure_ratio",
+    "evaporator_temperature_difference",
+    "condenser_temperature_difference",
+)
+"""Readings that are worked out from a gauge."""
+
+
+def cannot_be_read(key: str, system: System) -> str | None:
+    """Why nobody can read a quantity of this system, whatever instruments there are; None where it can be read.
+
+    A factory-sealed unit has no ports for gauges, and fitting some would end its seal. Where `measured_with` names an
+    instrument for a pressure, the unit has one of its own.
+    """
+    if not system.sealed or any(p in system.measured_with for p in PRESSURES) or key in system.measured_with:
+        return None
+    label = NOMENCLATURE[key].label.lower()
+    if key in PRESSURES:
+        return f"{label}: the unit is factory sealed and has no ports for gauges"
+    if key in FROM_PRESSURES:
+        return f"{label}: it follows from a pressure, and the unit is factory sealed and has no ports for gauges"
+    return None
 
 
 def choose_instrument(

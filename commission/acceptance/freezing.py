@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 from commission.acceptance.budget import Measured
 from commission.acceptance.capability import capability
-from commission.acceptance.choosing import choose_instrument
+from commission.acceptance.choosing import cannot_be_read, choose_instrument
 from commission.acceptance.conditions import known_to
 from commission.acceptance.grid import Axis, interpolate, middles, points
 from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
@@ -234,6 +234,8 @@ def _instrument_for(
 ) -> tuple[tuple[str, ...], float | None]:
     """The instrument that will read an expected value, and the standard uncertainty of the reading."""
     system, instruments = loaded.system(model.system_id), loaded.plant.instruments
+    if cannot_be_read(key, system) is not None:
+        return (), None
     name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
     if name is None:
         return (), None

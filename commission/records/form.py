@@ -28,6 +28,9 @@ people:
 """
 
 
+_WET, _HUMIDITY = "heat_source_wet_bulb", "heat_source_relative_humidity"
+
+
 def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel | None = None) -> str:
     """A record of this system and stage as YAML with everything left open, comments saying what belongs where.
 
@@ -44,6 +47,10 @@ def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel
     display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
     axes = [k for k in NOMENCLATURE if model is not None and k in model.condition_axes]
     axes = axes or ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
+    named = loaded.system(system).measured_with
+    if _WET in named and _HUMIDITY not in named:
+        axes = [_WET if k == _HUMIDITY else k for k in axes]
+        asked[_WET] = named[_WET]
     lines += ["conditions:", *_lines([(k, asked.get(k)) for k in axes], display)]
     lines += ["readings:", *_lines([(k, i) for k, i in asked.items() if k in READING_KEYS and k not in axes], display)]
     lines += ["answers:" if items else "answers: {}", *_answers(items)]
@@ -56,13 +63,14 @@ def _asked(loaded: LoadedPlant, system: str, model: SystemModel | None) -> dict[
     if model is None:
         return {k: measured_with[k] for k in NOMENCLATURE if k in measured_with}
     from commission.acceptance.capability import NEVER_READ
-    from commission.acceptance.choosing import choose_instrument
+    from commission.acceptance.choosing import cannot_be_read, choose_instrument
 
     prediction = model.predict()
     values = {**prediction.conditions, **{k: e.value for k, e in prediction.expected.items() if k not in NEVER_READ}}
     chosen = {
         k: choose_instrument(k, v, loaded.plant.instruments, measured_with, loaded.barometric_pressure)
         for k, v in values.items()
+        if cannot_be_read(k, loaded.system(system)) is None
     }
     return {k: chosen[k] for k in NOMENCLATURE if chosen.get(k) is not None}
 

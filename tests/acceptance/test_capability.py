@@ -7,7 +7,8 @@ from pathlib import Path
 
 import pytest
 
-from commission.acceptance import Budget, apply_change, capability, decide
+from commission.acceptance import Budget, apply_change, capability, decide, make_sheet
+from commission.acceptance.choosing import FROM_PRESSURES, PRESSURES
 from commission.description import LoadedPlant
 from commission.errors import InputError
 from commission.prediction import SystemModel, fit
@@ -98,3 +99,34 @@ def test_no_budget_is_empty(cold_room: LoadedPlant, cold_room_model: SystemModel
     """No row claims certainty: each budget has components."""
     for row in capability(cold_room, cold_room_model).readings:
         assert row.budget != Budget()
+
+
+def test_a_factory_sealed_unit_is_offered_no_gauges(tmp_path: Path) -> None:
+    """No ports: pressures and what is worked out from them are left out with the reason; probes and meters stay."""
+    sealed = COLD_ROOM.replace("    refrigerant:", "    sealed: yes\n    refrigerant:", 1)
+    plant = write_plant(tmp_path / "sealed", sealed)
+    model = fit(plant, "cold-room")
+    found = capability(plant, model, {SINK: 295.15})
+    rows = {r.key for r in found.readings}
+    assert not rows & {*PRESSURES, *FROM_PRESSURES}
+    assert {"discharge_temperature", "power_input"} <= rows
+    assert "has no ports" in found.not_read["suction_pressure"]
+    assert "follows from a pressure" in found.not_read["subcooling"]
+    assert found.guarantees[0].verdict.withheld is not None
+    assert "suction pressure" in found.guarantees[0].verdict.withheld
+    sheet = make_sheet(plant, model, {SINK: (295.15, 300.15)}, keys=["suction_pressure", "discharge_temperature"])
+    assert {t.key: t.instruments for t in sheet.targets_for("expectation")} == {
+        "suction_pressure": (),
+        "discharge_temperature": ("pipe probes",),
+    }
+
+
+def test_a_sealed_unit_with_its_own_gauge_is_read(tmp_path: Path) -> None:
+    """Where `measured_with` names an instrument for a pressure the unit has one of its own, and it is put to use."""
+    own = COLD_ROOM.replace("    refrigerant:", "    sealed: yes\n    refrigerant:", 1).replace(
+        "measured_with: {", "measured_with: {suction_pressure: low gauge, "
+    )
+    plant = write_plant(tmp_path / "own", own)
+    rows = {r.key: r for r in capability(plant, fit(plant, "cold-room"), {SINK: 295.15}).readings}
+    assert rows["suction_pressure"].instrument == "low gauge"
+    assert "evaporating_temperature" in rows

@@ -24,10 +24,17 @@ def figure(remark: Remark, label: str) -> Figure:
 
 @pytest.mark.parametrize(
     ("refrigerant", "celsius", "fires"),
-    [("R-290", 95, False), ("R-290", 115, True), ("R-717", 130, False), ("R-717", 145, True)],
+    [
+        ("R-290", 95, False),
+        ("R-290", 115, True),
+        ("R-717", 130, False),
+        ("R-717", 145, True),
+        ("R-744", 120, False),
+        ("R-744", 133, True),
+    ],
 )
 def test_discharge_too_hot(facts: Facts, refrigerant: str, celsius: float, fires: bool) -> None:
-    """110 °C for hydrocarbons, 140 °C for ammonia (common practice, no source)."""
+    """110 °C for hydrocarbons, 140 °C for ammonia, 130 °C for carbon dioxide (common practice, no source)."""
     expected = {"hottest": {"discharge_temperature": (celsius + CELSIUS, 2.0)}}
     found = list(envelope.discharge_too_hot(facts({"refrigerant": refrigerant}, expected=expected)))
     assert [remark.severity for remark in found] == (["warning"] if fires else [])
@@ -331,3 +338,21 @@ def test_market_dates_follow_the_size(facts: Facts) -> None:
 
     assert dates("10 kW") == ["Chillers up to 12 kW with GWP 150 or more"]
     assert dates("20 kW") == []
+
+
+def test_market_dates_go_by_the_rating_and_not_by_full_speed(facts: Facts) -> None:
+    """A split rated 9.9 kW at its nominal speed that reaches 12.1 kW at full speed is one of up to 12 kW."""
+
+    def split(speed: str, capacity: str) -> dict[str, str]:
+        return {"heat_source_inlet_temperature": "27 °C", "heat_sink_inlet_temperature": "35 °C",
+                "compressor_speed": speed, "cooling_capacity": capacity, "power_input": "3 kW"}  # fmt: skip
+
+    points = [split("5400 rpm", "12.1 kW"), split("3600 rpm", "9.9 kW"), split("1800 rpm", "5 kW")]
+    system = {"duty": "comfort_cooling", "refrigerant": "R-32", "rated_points": points}
+    at_speed = facts({**system, "compressor": {"drive": "variable speed", "nominal_speed": "3600 rpm"}})
+    assert duties.rated_capacity(at_speed) == pytest.approx(9900.0)
+    assert [r.title.split(":")[0] for r in duties.law_dates(at_speed)] == [
+        "Split air-to-air systems up to 12 kW with GWP 150 or more"
+    ]
+    not_said = facts({**system, "rated_points": points[1:], "compressor": {"drive": "variable speed"}})
+    assert duties.rated_capacity(not_said) == pytest.approx(9900.0)

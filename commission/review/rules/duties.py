@@ -118,10 +118,22 @@ def _in_size(facts: SystemFacts, entry: dict[str, Any]) -> bool:
 
 
 def rated_capacity(facts: SystemFacts) -> float | None:
-    """Largest capacity in W that the supplier states: of heat for heating duties, else of cooling; None if none is."""
+    """The rated capacity in W: of heat for heating duties, else of cooling; None where none is stated.
+
+    A law goes by the rating and not by what the machine can do at full speed: it is the first point that states the
+    capacity, of those at the nominal speed where that is stated. A list begins with the rating.
+    """
     key = "cooling_capacity" if facts.cools else "heating_capacity"
-    stated = [getattr(point, key) for point in facts.system.rated_points]
+    points = [point for point in facts.system.rated_points if getattr(point, key) is not None]
+    nominal = facts.system.compressor.nominal_speed
+    at_nominal = [p for p in points if nominal is not None and _same(p.compressor_speed, nominal)]
+    stated: list[float] = [getattr(point, key) for point in at_nominal or points]
     unit = facts.system.condensing_unit
     if unit is not None and facts.cools:
         stated += [row.cooling_capacity for row in unit.rated_points]
-    return max((value for value in stated if value is not None), default=None)
+    return stated[0] if stated else None
+
+
+def _same(speed: float | None, nominal: float) -> bool:
+    """The same speed but for rounding of the printed figures."""
+    return speed is not None and abs(speed - nominal) <= 0.01 * nominal

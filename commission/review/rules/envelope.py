@@ -8,15 +8,17 @@ from commission.review.facts import SystemFacts, explained_figure
 from commission.review.finding import Remark
 
 OUTLOOKS = ("hottest", "coldest", "design")
+_HOTTEST = {"R-717": "discharge_temperature_ammonia", "R-744": "discharge_temperature_carbon_dioxide"}
+"""The threshold of refrigerants whose machines and oils bear more than those of halocarbons and hydrocarbons."""
 
 
 def discharge_too_hot(facts: SystemFacts) -> Iterator[Remark]:
     """An expected discharge temperature above what oil bears, or above the limit that is set.
 
-    Source: common practice (thresholds `discharge_temperature_warm`, `discharge_temperature_ammonia`).
+    Source: common practice (thresholds `discharge_temperature_warm`, and of its own for ammonia and carbon dioxide).
     """
-    ammonia = facts.refrigerant is not None and facts.refrigerant.name == "R-717"
-    entry = facts.plant.threshold("discharge_temperature_ammonia" if ammonia else "discharge_temperature_warm")
+    name = facts.refrigerant.name if facts.refrigerant is not None else ""
+    entry = facts.plant.threshold(_HOTTEST.get(name, "discharge_temperature_warm"))
     setting = facts.system.controls.discharge_temperature_limit
     limit = entry.value if setting is None else min(entry.value, setting)
     for name in OUTLOOKS:
