@@ -30,9 +30,11 @@ from commission.manual.records_pages import (
 from commission.manual.saturation import saturation_page
 from commission.manual.states import Standing
 from commission.manual.store import Store
+from commission.manual.upkeep_pages import CALENDAR, PAGE, next_duties, upkeep_page
 
 if TYPE_CHECKING:
     from commission.review import Finding
+    from commission.upkeep import Duty
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,6 +51,7 @@ class Contents:
 def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], None]) -> Contents:
     """All pages of the manual, with links that are checked when they are rendered."""
     from commission.review import review
+    from commission.upkeep import calendar, due
 
     book = Book()
     documents, left_documents = copied_files(plant.loaded.folder)
@@ -66,11 +69,17 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     findings = review(plant.loaded, models={d.id: d.model for d in plant.systems if d.model is not None})
     standings = {d.id: _standing(d, findings, archive) for d in plant.systems}
     counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
-    book.add(plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts))
+    progress("counting what is due")
+    duties = due(plant.loaded)
+    texts[CALENDAR] = calendar(plant.loaded)
+    book.add_file(CALENDAR)
+    glance = plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts, _first_day(duties))
+    book.add(glance)
     book.add(safety_pages.emergency_page(plant))
     for data in plant.systems:
-        _system(book, plant, data, documents, archive, texts, store, progress)
+        _system(book, plant, data, documents, archive, duties, texts, store, progress)
     book.add(open_items_page(plant, archive))
+    book.add(upkeep_page(book, plant, archive, duties))
     book.add(findings_page(plant, findings))
     book.add(plant_pages.instruments(plant))
     links = {"": document_links(plant.loaded, documents, None)}
@@ -84,6 +93,10 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     book.add(plant_pages.carry_page())
     book.add(plant_pages.search_page())
     return Contents(book, (*documents, *pages, *archive.files), texts, findings, (*left_documents, *left_pages))
+
+
+def _first_day(duties: tuple[Duty, ...]) -> str | None:
+    return next((d.next.isoformat() for d in duties if d.next is not None), None)
 
 
 def _standing(data: SystemData, findings: tuple[Finding, ...], archive: Archive) -> Standing:
@@ -104,6 +117,7 @@ def _system(
     data: SystemData,
     documents: tuple[OwnerFile, ...],
     archive: Archive,
+    duties: tuple[Duty, ...],
     texts: dict[str, bytes],
     store: Store | None,
     progress: Callable[[str], None],
@@ -118,7 +132,8 @@ def _system(
         for path, svg in draw(figure, store).items():
             texts[path] = svg
             book.add_file(path)
-    book.add(system_pages.what_it_is(plant, data, document_links(plant.loaded, documents, data.id)))
+    links = document_links(plant.loaded, documents, data.id)
+    book.add(system_pages.what_it_is(plant, data, links, next_duties(data, duties), bool(archive.of(data.id)), PAGE))
     book.add(system_pages.how_it_should_run(plant, data, weather, cycle))
     book.add(saturation_page(plant, data))
     book.add(safety_pages.safety_page(plant, data))

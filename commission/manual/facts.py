@@ -11,6 +11,7 @@ from pydantic.fields import FieldInfo
 
 from commission.description import Conditions, LoadedPlant
 from commission.description.shapes import meaning_of
+from commission.manual.page_display import three_figures
 from commission.quantities import NOMENCLATURE, Display, Kind, Pressure, pretty
 
 
@@ -87,13 +88,19 @@ def kind_of_field(info: FieldInfo) -> Kind | None:
 
 
 def stated_number(display: Display, value: float, kind: Kind) -> str:
-    """A stated value with as many decimals as it takes not to change it by more than half a per cent."""
+    """A stated value with as many decimals as it takes not to change it by more than half a per cent.
+
+    A flow that comes back from the calculation a hair off (2601 for a stated 2600) gets its three figures.
+    """
     if kind is Kind.DURATION and value >= 7200.0 and value % 3600.0 == 0.0:
         return f"{value / 3600.0:g} h"
     shown = display.convert(value, kind)
     unit, digits = display.unit_and_digits(kind)
     if kind is Kind.TEMPERATURE:
         return display.text(value, kind)
+    if kind is Kind.VOLUME_FLOW and abs(three_figures(shown) - shown) <= 0.001 * abs(shown):
+        value *= three_figures(shown) / shown if shown else 1.0
+        shown = display.convert(value, kind)
     while digits < 4 and abs(round(shown, digits) - shown) > 0.005 * abs(shown):
         digits += 1
     return f"{display.number(value, kind, digits)} {pretty(unit)}".strip()

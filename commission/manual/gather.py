@@ -10,6 +10,7 @@ from commission.description import Assumption, LoadedPlant, System
 from commission.errors import CommissionError, NotCalculatedError
 from commission.manual.book import slugs
 from commission.manual.grid import Grid, make_grid
+from commission.manual.page_display import PageDisplay
 from commission.manual.remembering import remembering
 from commission.quantities import Display
 
@@ -67,7 +68,7 @@ class PlantData:
 
 def gather(loaded: LoadedPlant, progress: Callable[[str], None]) -> PlantData:
     """Calculates every system once."""
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     names = slugs(tuple(loaded.plant.systems))
     systems = tuple(_system(loaded, identity, slug, progress) for identity, slug in names.items())
     return PlantData(loaded, display, systems)

@@ -36,7 +36,11 @@ class GlanceSystem:
 
 
 def at_a_glance(
-    plant: PlantData, standings: dict[str, Standing], open_items: tuple[OpenLine, ...], counts: dict[str, int]
+    plant: PlantData,
+    standings: dict[str, Standing],
+    open_items: tuple[OpenLine, ...],
+    counts: dict[str, int],
+    first_day: str | None,
 ) -> Sheet:
     """The front page: what plant this is, where each system stands, what is open, what to do next."""
     shown, urgent = [], []
@@ -72,6 +76,7 @@ def at_a_glance(
         "summary": _summary(plant),
         "open_items": open_items,
         "counts": counts,
+        "first_day": first_day,
     }
     return Sheet("index", plant.name, "plant", "glance.html", context, short="Plant at a glance")
 

@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError, NotCalculatedError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.page_display import PageDisplay
 from commission.manual.showing import COVERAGE, How, band_text, label_of, show_how, size_text, unit_of
 from commission.manual.system_pages import conditions_words
 from commission.quantities import NOMENCLATURE, Display, Kind
@@ -218,7 +219,7 @@ def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
 
 
 def _sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: str | None) -> dict[str, Any]:
-    display = Display(plant.display.system, sheet.barometric_pressure)
+    display = PageDisplay(plant.display.system, sheet.barometric_pressure)
     return {
         "because": None,
         "frozen": frozen,

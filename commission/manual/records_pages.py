@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.page_display import PageDisplay
 from commission.manual.plant_pages import OpenLine
 from commission.manual.plots import Figure
 from commission.manual.showing import label_of, unit_of
@@ -221,7 +222,7 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
 
 def _shared(plant: PlantData, record: FiledRecord, archive: Archive) -> dict[str, Any]:
     """What record page and certificate share."""
-    display = Display(plant.display.system, record.filed.barometric_pressure)
+    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
     filed, file = record.filed, record.file
     return {
         "record": record,
@@ -248,7 +249,7 @@ def _shared(plant: PlantData, record: FiledRecord, archive: Archive) -> dict[str
 
 def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
     """One visit as it was filed."""
-    display = Display(plant.display.system, record.filed.barometric_pressure)
+    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
     filed = record.filed
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]

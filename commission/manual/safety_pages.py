@@ -8,11 +8,11 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.showing import How, Row, show_how, unit_of
+from commission.manual.showing import How, Row, show, show_how, unit_of
 from commission.quantities import Display, Kind, pretty
 
 if TYPE_CHECKING:
-    from commission.safety import ChargeLimit, Figure, Figures, LimitOrder, SpaceCharge
+    from commission.safety import ChargeLimit, Figure, Figures, LimitOrder, ReliefDuty, SpaceCharge, Substance
 
 _GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     ("Strength and tightness", (
@@ -55,7 +55,19 @@ class SpaceView:
     verdict: str
     over: bool | None
     limits: tuple[LimitView, ...]
+    alternatives: tuple[LimitView, ...]
     notes: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class ReliefView:
+    """One reason for a relief device: `stated` is what the description shows of it, `look` the tint of the note."""
+
+    title: str
+    stated: str
+    look: str
+    rows: tuple[Row, ...]
+    source: str
 
 
 def _sentence(text: str) -> str:
@@ -81,9 +93,9 @@ def figure_row(figure: Figure, data: SystemData, display: Display) -> Row:
 
 
 def _missing_row(key: str, reason: str) -> Row:
-    from commission.safety import FIGURE_TITLES
+    from commission.safety import QUANTITY_TITLES
 
-    return Row(key, _sentence(FIGURE_TITLES[key][0]), "", None, "", "", None, because=reason)
+    return Row(key, _sentence(QUANTITY_TITLES[key][0]), "", None, "", "", None, because=reason)
 
 
 def _groups(figures: Figures, data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
@@ -113,6 +125,7 @@ def _space(space: SpaceCharge, data: SystemData, display: Display) -> SpaceView:
         verdict=_sentence(space.advice),
         over=space.over,
         limits=tuple(_limit(x, data, display) for x in space.limits),
+        alternatives=tuple(_limit(x, data, display) for x in space.alternatives),
         notes=space.notes,
     )
 
@@ -122,15 +135,62 @@ def _ladder(order: LimitOrder, display: Display) -> dict[str, Any]:
     return {"steps": steps, "problems": order.problems}
 
 
+_RELIEF = {
+    True: ("The description names a relief valve.", "good"),
+    False: ("The description names no relief valve.", "danger"),
+    None: ("The description does not say whether it is there: look on the plant.", "care"),
+}
+
+
+def _relief(duty: ReliefDuty, data: SystemData, display: Display) -> ReliefView:
+    from commission.safety import MARKS
+
+    stated, look = _RELIEF[duty.stated]
+    rows = tuple(replace(show(e.quantity, e, display, data.assumptions), band="") for e in duty.figures)
+    return ReliefView(_sentence(duty.title), stated, look, rows, f"{duty.source}; {MARKS[duty.mark]}")
+
+
+def _law_dates(plant: PlantData, data: SystemData, substance: Substance) -> list[dict[str, str]]:
+    """What the law of the plant forbids, and from when, in the order of days."""
+    from commission.safety import MARKS, market_dates
+
+    return [
+        {
+            "since": d.since.isoformat(),
+            "what": _sentence(d.what),
+            "until": f"reclaimed gas is allowed until {d.reclaimed_until}" if d.reclaimed_until else "",
+            "source": f"{d.document}, {d.edition}; {MARKS[d.mark]}",
+        }
+        for d in market_dates(plant.loaded.plant.plant.rules.refrigerant_law, data.system, substance)
+    ]
+
+
+def _warm_below(plant: PlantData, data: SystemData) -> tuple[Row, ...]:
+    """The part of a store that its element leaves warm, where there is one."""
+    from commission.safety import warm_volume_below_element
+
+    found = warm_volume_below_element(plant.loaded, data.id)
+    return (show(found.quantity, found, plant.display, data.assumptions),) if found is not None else ()
+
+
 def safety_page(plant: PlantData, data: SystemData) -> Sheet:
     """Pressures, evacuation, limit devices, charge for each space, leak checks: figures with document and edition."""
-    from commission.properties import refrigerant
-    from commission.safety import MARKS, charge_limits, hazards, leak_duty, limit_order, safety_figures, substance_of
+    from commission.safety import (
+        MARKS,
+        charge_limits,
+        fluid_of,
+        hazards,
+        leak_duty,
+        limit_order,
+        relief_duties,
+        safety_figures,
+        substance_of,
+    )
 
     loaded, display = plant.loaded, plant.display
     context: dict[str, Any] = {"because": None}
     try:
-        substance = substance_of(refrigerant(data.system.refrigerant))
+        substance = substance_of(fluid_of(loaded, data.id))
         figures = safety_figures(loaded, data.id, data.model)
         s = data.system
         context |= {
@@ -140,6 +200,9 @@ def safety_page(plant: PlantData, data: SystemData) -> Sheet:
             "groups": _groups(figures, data, display),
             "spaces": [_space(x, data, display) for x in charge_limits(loaded, data.id, substance)],
             "ladder": _ladder(limit_order(loaded, data.id, figures), display),
+            "relief": [_relief(x, data, display) for x in relief_duties(loaded, data.id, figures)],
+            "dates": _law_dates(plant, data, substance),
+            "warm_below": _warm_below(plant, data),
             "duty": leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, s.charge, s.sealed, s.duty),
             "assumptions_page": data.page("assumptions"),
         }
@@ -150,13 +213,12 @@ def safety_page(plant: PlantData, data: SystemData) -> Sheet:
 
 def emergency_page(plant: PlantData) -> Sheet:
     """The card of each system, one printed page each."""
-    from commission.properties import refrigerant
-    from commission.safety import emergency_card, substance_of
+    from commission.safety import emergency_card, fluid_of, substance_of
 
     cards, missing = [], []
     for data in plant.systems:
         try:
-            substance = substance_of(refrigerant(data.system.refrigerant))
+            substance = substance_of(fluid_of(plant.loaded, data.id))
         except CommissionError as error:
             missing.append((data.name, "; ".join(p.message for p in error.problems)))
             continue

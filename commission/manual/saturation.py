@@ -43,11 +43,11 @@ def saturation_page(plant: PlantData, data: SystemData) -> Sheet:
 
 def _context(plant: PlantData, data: SystemData) -> dict[str, object]:
     from commission.prediction import saturation_table
-    from commission.properties import refrigerant
+    from commission.safety import fluid_of
 
     display = plant.display
     try:
-        fluid = refrigerant(data.system.refrigerant)
+        fluid = fluid_of(plant.loaded, data.id)
         temperatures = table_temperatures(fluid.T_low, fluid.T_high, display)
         table = saturation_table(fluid, plant.loaded.barometric_pressure, temperatures)
     except NotCalculatedError as error:

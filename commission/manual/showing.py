@@ -73,9 +73,9 @@ def kind_of(explained: Explained) -> Kind:
 
 
 def _safety_titles() -> Mapping[str, tuple[str, Kind]]:
-    from commission.safety import FIGURE_TITLES
+    from commission.safety import QUANTITY_TITLES
 
-    return FIGURE_TITLES
+    return QUANTITY_TITLES
 
 
 def unit_of(display: Display, kind: Kind) -> str:
@@ -190,15 +190,16 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
         (
             "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature",
             "liquid_temperature", "heat_source_inlet_temperature", "heat_source_outlet_temperature",
-            "heat_sink_inlet_temperature", "heat_sink_outlet_temperature",
+            "heat_sink_inlet_temperature", "heat_sink_outlet_temperature", "gas_cooler_outlet_temperature",
+            "heat_source_flow", "heat_sink_flow",
         ),
     ),
     (
         "As engineers think",
         (
             "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
-            "condensing_temperature", "condenser_temperature_difference", "subcooling", "pressure_ratio",
-            "heat_source_temperature_change", "heat_sink_temperature_change",
+            "condensing_temperature", "condenser_temperature_difference", "subcooling", "gas_cooler_approach",
+            "pressure_ratio", "heat_source_temperature_change", "heat_sink_temperature_change",
         ),
     ),
     ("Power and current", ("power_input", "compressor_power", "fan_power", "current")),

@@ -13,6 +13,7 @@ from commission.manual.documents import DocumentLink
 from commission.manual.facts import guarantees, rated_points, stated_number, system_facts
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
+from commission.manual.heating_up import heating_ups
 from commission.manual.plots import Figure
 from commission.manual.showing import (
     How,
@@ -25,17 +26,28 @@ from commission.manual.showing import (
     show_how,
     unit_of,
 )
+from commission.manual.upkeep_pages import NextDuty
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 
-def what_it_is(plant: PlantData, data: SystemData, documents: tuple[DocumentLink, ...]) -> Sheet:
-    """Nameplate, components, boundary, settings and documents."""
+def what_it_is(
+    plant: PlantData,
+    data: SystemData,
+    documents: tuple[DocumentLink, ...],
+    coming: tuple[NextDuty, ...],
+    filed: bool,
+    upkeep: str,
+) -> Sheet:
+    """What comes due next (all of it on page `upkeep`), nameplate, components, boundary, settings and documents."""
     return Sheet(
         data.page("what-it-is"),
         "What it is",
         data.group,
         "what.html",
         {
+            "coming": coming,
+            "filed": filed,
+            "upkeep": upkeep,
             "groups": system_facts(plant.loaded, data.id, plant.display),
             "rated": rated_points(plant.loaded, data.id, plant.display),
             "promised": guarantees(plant.loaded, data.id, plant.display),
@@ -234,6 +246,7 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
             "charts": figures,
             "grid_note": _grid_note(plant, data, grid) if grid else "",
             "table": grid_table(data, grid, display) if grid else None,
+            "heating_up": heating_ups(plant, data),
             "ph": _ph_context(data, ph, display) if ph else None,
             "assumptions_page": data.page("assumptions"),
             "day_sheet": data.page("day-sheet"),
