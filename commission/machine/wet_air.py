@@ -18,8 +18,8 @@ import numpy as np
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
 from commission.properties import MoistAir, saturated_air, saturated_air_at_enthalpy
-from commission.properties.lines import Array
-from commission.properties.psychrometrics import COLDEST, HOTTEST, saturated_air_rows
+from commission.properties.air_rows import Array, saturated_air_rows
+from commission.properties.psychrometrics import COLDEST, HOTTEST
 
 LATENT = 2.501e6
 """Latent heat of water at 0 °C in J/kg (ASHRAE Handbook Fundamentals 2017, ch. 1, eq. 30)."""

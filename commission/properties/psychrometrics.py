@@ -12,20 +12,16 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass
 
-import numpy as np
-from numpy.typing import NDArray
-
 from commission.properties.errors import PropertyRangeError, celsius
 
-Array = NDArray[np.float64]
 COLDEST, HOTTEST = 173.15, 473.15  # K; the range of equations 5 and 6
 TRIPLE_POINT = 273.16
 MASS_RATIO = 0.621945  # of water to dry air, equation 20
 GAS_CONSTANT = 287.042  # J/(kg K) of dry air, equation 1
 CP_AIR, CP_VAPOUR, LATENT = 1006.0, 1860.0, 2.501e6  # J/(kg K), J/(kg K), J/kg; equation 30
 ROUNDING = 1e-9
-_ICE = (-5.6745359e3, 6.3925247, -9.6778430e-3, 6.2215701e-7, 2.0747825e-9, -9.4840240e-13, 4.1635019)
-_WATER = (-5.8002206e3, 1.3914993, -4.8640239e-2, 4.1764768e-5, -1.4452093e-8, 0.0, 6.5459673)
+ICE = (-5.6745359e3, 6.3925247, -9.6778430e-3, 6.2215701e-7, 2.0747825e-9, -9.4840240e-13, 4.1635019)
+WATER = (-5.8002206e3, 1.3914993, -4.8640239e-2, 4.1764768e-5, -1.4452093e-8, 0.0, 6.5459673)
 
 
 @dataclass(frozen=True, slots=True)
@@ -127,22 +123,6 @@ def saturated_air(T: float, p: float) -> MoistAir:
     return moist_air(T, p, relative_humidity=1.0)
 
 
-def saturated_air_rows(T: Array, p: Array) -> tuple[Array, Array]:
-    """Humidity ratio and enthalpy (J per kg dry air) of saturated air for arrays of `T` (K) and `p` (Pa).
-
-    Raises:
-        PropertyRangeError: any temperature outside -100 °C to 200 °C, or at which water boils.
-    """
-    for end in (float(T.min()), float(T.max())):
-        _humidity_ratio(saturation_pressure(end), float(p.min()))
-    vapour = np.empty_like(T)
-    for here, (a, b, c, d, e, f, g) in ((T < TRIPLE_POINT, _ICE), (T >= TRIPLE_POINT, _WATER)):
-        t = T[here]
-        vapour[here] = np.exp(a / t + b + t * (c + t * (d + t * (e + t * f))) + g * np.log(t))
-    W = MASS_RATIO * vapour / (p - vapour)
-    return W, CP_AIR * (T - 273.15) + W * (LATENT + CP_VAPOUR * (T - 273.15))
-
-
 def saturation_pressure(T: float) -> float:
     """Pressure (Pa) of saturated water vapour over ice (below 0.01 °C) or water at `T` (K); equations 5 and 6.
 
@@ -178,12 +158,12 @@ def dew_point(vapour_pressure: float) -> float:
 
 
 def _log_saturation(T: float) -> float:
-    a, b, c, d, e, f, g = _ICE if T < TRIPLE_POINT else _WATER
+    a, b, c, d, e, f, g = ICE if T < TRIPLE_POINT else WATER
     return a / T + b + T * (c + T * (d + T * (e + T * f))) + g * math.log(T)
 
 
 def _log_slope(T: float) -> float:
-    a, _, c, d, e, f, g = _ICE if T < TRIPLE_POINT else _WATER
+    a, _, c, d, e, f, g = ICE if T < TRIPLE_POINT else WATER
     return -a / T**2 + c + T * (2 * d + T * (3 * e + 4 * T * f)) + g / T
 
 
