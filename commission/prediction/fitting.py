@@ -11,7 +11,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -23,8 +23,12 @@ from commission.prediction.problem import Problem, prepare, restricted
 from commission.prediction.rated import MARGIN, Case, Datum, rated_of
 from commission.prediction.simulating import Seen, observed
 from commission.prediction.table import Array, Table, gaps_of, move, scatter_directions
+from commission.quantities import Kind
 
 SCATTER = "scatter of rated points"
+WIDE_SCATTER = 0.05
+"""Scatter from which rated points are not those of one machine at one speed: rounding and boundary leave 2 to 4 %
+(common practice, no source)."""
 
 
 @dataclass(frozen=True)
@@ -45,7 +49,8 @@ class Fit:
     """The fitted machine and what its uncertainty rests on.
 
     `scatter` is the relative standard deviation of capacity and power about the fit (n - p degrees of freedom `dof`),
-    0 where the fit is exact. `misses` lists every datum with the relative miss of the fit.
+    0 where the fit is exact. `held` are assumptions that the rated points would move beyond what is possible, with the
+    end at which they stay. `misses` lists every datum with the relative miss of the fit.
     """
 
     plan: Plan
@@ -58,6 +63,7 @@ class Fit:
     scatter: float
     dof: int
     misses: tuple[tuple[Datum, float], ...]
+    held: Mapping[str, float] = field(default_factory=dict)
 
 
 def fit_system(facts: Facts) -> Fit:
@@ -180,8 +186,16 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     build(problem.facts, values, start, rated_of(problem.facts, values, problem.cases[problem.reference]))
     gaps_of(problem, values, start, None)
     problem = replace(problem, loose=tuple(_uncertain(problem.facts, values)))
-    table = Table(problem, values.plain())
-    x, gaps, plan, points, matrix = table.minimum(table.pack(start))
+    held: dict[str, float] = {}
+    for _ in range(6):
+        table = Table(problem, {**values.plain(), **held})
+        x, gaps, plan, points, matrix = table.minimum(table.pack(start))
+        start, found = table.unpack(x)
+        beyond = {k: b for k in problem.loose if (b := _bound(problem.facts.assumptions[k], found[k])) is not None}
+        if not beyond:
+            break
+        held |= beyond
+        problem = replace(problem, loose=tuple(k for k in problem.loose if k not in held))
     stated = np.array([d.assumption is None for c in problem.cases for d in c.data])
     dof = len(stated) - len(problem.free)
     chi = math.sqrt(float((gaps[: len(stated)][stated] ** 2).sum()) / dof)
@@ -198,5 +212,36 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
         variants.append(Variant(key, table.plan(x + inverse[:, len(problem.free) + n]), sign))
     for direction in scatter_directions(inverse, matrix[: len(stated)][stated]):
         variants.append(Variant(SCATTER, table.plan(x + max(chi, 1.0) * direction), 1.0))
-    levels, a = table.unpack(x)
-    return _finish(problem, levels, plan, points, values, tuple(variants), MARGIN * chi, dof, a)
+    done = _finish(problem, start, plan, points, values, tuple(variants), MARGIN * chi, dof, found)
+    return replace(done, held=held)
+
+
+def _bound(assumption: Assumption, value: float) -> float | None:
+    """The end of what is possible, where `value` lies beyond it: nothing of what is called a loss, a share or a size is
+    negative, and no share is above one."""
+    if assumption.low >= 0 > value:
+        return 0.0
+    if assumption.kind is Kind.RATIO and assumption.high <= 1 < value:
+        return 1.0
+    return None
+
+
+def doubts(found: Fit) -> tuple[str, ...]:
+    """Sentences on rated points that do not look like those of one machine, for every prediction."""
+    notes = []
+    for key in found.held:
+        notes.append(
+            f"the rated points can only be met with a {_lower(found.used[key].title)} that cannot be; it is held at "
+            "the end of what is possible: the points contradict each other, or their power counts other parts than "
+            "stated"
+        )
+    if found.scatter > WIDE_SCATTER:
+        notes.append(
+            f"the rated points lie {100 * found.scatter:.0f} % about the fit of one machine: if its speed is "
+            "controlled, state compressor_speed with each point; else look for a slip in them"
+        )
+    return tuple(notes)
+
+
+def _lower(title: str) -> str:
+    return title[:1].lower() + title[1:]

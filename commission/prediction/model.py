@@ -14,7 +14,7 @@ from commission.prediction.conditions import ConditionAxis, axes_of, complete
 from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
-from commission.prediction.fitting import SCATTER, Fit, fit_system
+from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system
 from commission.prediction.guard import in_words
 from commission.prediction.rated import reference
 from commission.properties import Refrigerant
@@ -317,7 +317,7 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
         fitted=_fitted(facts, found),
         fit=found,
         facts=facts,
-        left_out=notes,
+        left_out=(*notes, *doubts(found)),
     )
 
 

@@ -1,4 +1,9 @@
-"""Machines fitted at one point against open certified test results at another."""
+"""Machines fitted at one point against open certified test results at another.
+
+The ranges of a compressor whose type is not stated (clearance, leakage, built-in volume ratio) were centred on these
+very medians, so that this is a check of consistency, which keeps later changes from losing them, and no independent
+proof. An independent one is in `test_reference_published_cop.py`.
+"""
 
 from __future__ import annotations
 
@@ -17,7 +22,8 @@ def test_brine_to_water_heat_pump_at_52_degrees(
     brine_heat_pump: Callable[..., SystemModel], fluid: str, cop: float, capacity: float
 ) -> None:
     """Open certified results of on/off brine-to-water heat pumps, brine 0 °C, medians of 87 (R-410A) and 56 (R-407C):
-    COP and capacity at 52 °C over those at 34 °C lie in the k=2 band, nearer than constant efficiencies come."""
+    COP and capacity at 52 °C over those at 34 °C lie in the k=2 band, nearer than constant efficiencies come. The
+    assumed ranges were calibrated on these medians: a check of consistency, not an independent proof."""
     model = brine_heat_pump(fluid)
     rated, hot = model.predict().expected, model.predict({"heat_sink_outlet_temperature": 325.15}).expected
     for key, measured in (("heating_cop", cop), ("heating_capacity", capacity)):
