@@ -120,7 +120,10 @@ class Circuit:
         m, fluid = self.machine, self.machine.refrigerant
         outlet, suction = self.low_side(balance.evaporating_temperature)
         pressure, liquid = self.high_side(balance.evaporating_temperature, self.second(balance))
-        discharge = fluid.vapour_from_enthalpy(pressure, balance.compression.discharge_enthalpy)
+        compression = balance.compression
+        discharge = fluid.vapour_from_enthalpy(
+            pressure, compression.discharge_enthalpy, near=compression.isentropic_end
+        )
         throttled = fluid.throttled(outlet.p, liquid.h)
         states = (
             StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),

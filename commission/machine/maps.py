@@ -20,6 +20,7 @@ from commission.machine.operating_point import Balance, Media
 from commission.machine.single_stage import FREE, SingleStage, _Circuit
 from commission.machine.streams import Stream
 from commission.machine.wet_air import coil_heats
+from commission.properties import State
 from commission.properties.lines import Array, nodes, series_at_nodes
 
 Ends = tuple[float, float]
@@ -277,9 +278,10 @@ class _Chart:
         table = np.empty((len(COLUMNS), len(levels), TERMS, TERMS))
         for k, around in enumerate(levels):
             circuit = _Circuit(grid.machine, grid.media(0, 0, around))
+            near: State | None = None
             for j, condensing in enumerate(_spread(second, TERMS)):  # compressions to one pressure lie near each other
                 for i, evaporating in enumerate(_spread(first, TERMS)):
-                    table[:, k, i, j] = _row(circuit, evaporating, condensing)
+                    table[:, k, i, j], near = _row(circuit, evaporating, condensing, near)
         for axis in (1, 2, 3):
             table = np.moveaxis(series_at_nodes(np.moveaxis(table, axis, -1)), -1, axis)
         return cls((first, second, third), table)
@@ -314,13 +316,15 @@ def _terms(value: Array, ends: Ends, count: int) -> Array:
     return np.asarray(chebyshev.chebvander(scaled, count - 1))
 
 
-def _row(circuit: _Circuit, evaporating: float, condensing: float) -> tuple[float, ...]:
-    """`COLUMNS` at one pair of dew temperatures."""
+def _row(
+    circuit: _Circuit, evaporating: float, condensing: float, near: State | None
+) -> tuple[tuple[float, ...], State]:
+    """`COLUMNS` at one pair of dew temperatures, and the discharge; `near` is a neighbouring one."""
     compression, source, sink = circuit.cycle(evaporating, condensing)
     pressure = circuit.high_side(evaporating, condensing)[0]
-    discharge = circuit.machine.refrigerant.vapour_from_enthalpy(pressure, compression.discharge_enthalpy)
+    discharge = circuit.machine.refrigerant.vapour_from_enthalpy(pressure, compression.discharge_enthalpy, near)
     drives = circuit.source_drive(evaporating, condensing), circuit.sink_drive(condensing)
-    return source, sink, *drives, compression.power, compression.flow, discharge.T
+    return (source, sink, *drives, compression.power, compression.flow, discharge.T), discharge
 
 
 def _ends(values: Sequence[float], more: float) -> Ends:

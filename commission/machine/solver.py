@@ -54,7 +54,7 @@ def solve(
     matrix: list[list[float]] | None = [list(row) for row in jacobian] if jacobian is not None else None
     known = matrix
     fresh = False
-    while max(abs(v) for v in r) > tolerance:
+    while _worst(r) > tolerance:
         if count >= evaluations:
             raise NoSolutionError("no balance was found: heat and flow do not come together at any condition tried")
         if matrix is None:
@@ -81,7 +81,7 @@ def solve(
 
 
 def _worst(r: Sequence[float]) -> float:
-    return max(abs(v) for v in r)
+    return max(map(abs, r))
 
 
 def _identity(n: int) -> list[list[float]]:
@@ -132,7 +132,7 @@ def _linear(matrix: list[list[float]], right: list[float]) -> list[float] | None
 def _limited(step: list[float] | None, largest: float) -> list[float] | None:
     if step is None:
         return None
-    longest = max(abs(v) for v in step)
+    longest = max(map(abs, step))
     return step if longest <= largest else [v * largest / longest for v in step]
 
 
@@ -144,7 +144,7 @@ def _move(
     Reasons why a step could not be evaluated are added to `refused`.
     """
     for trial in range(6):
-        taken = [v * 0.5**trial for v in step]
+        taken = [v * 0.5**trial for v in step] if trial else step
         x_new = [a + b for a, b in zip(x, taken, strict=True)]
         try:
             r_new = list(residuals(x_new))
@@ -157,9 +157,13 @@ def _move(
 
 
 def _broyden(matrix: list[list[float]], step: list[float], change: list[float]) -> list[list[float]]:
-    square = sum(v * v for v in step)
+    square = sum([v * v for v in step])
     if square == 0:
         return matrix
     n = len(step)
+    if n == 2:
+        (a, b), (c, d), (x, y) = *matrix, step
+        first, second = (change[0] - a * x - b * y) / square, (change[1] - c * x - d * y) / square
+        return [[a + first * x, b + first * y], [c + second * x, d + second * y]]
     gap = [(change[i] - sum(matrix[i][j] * step[j] for j in range(n))) / square for i in range(n)]
     return [[matrix[i][j] + gap[i] * step[j] for j in range(n)] for i in range(n)]

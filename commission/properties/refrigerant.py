@@ -198,8 +198,10 @@ class Refrigerant(Saturation):
             return _state(self._held(self._beyond.isentropic_end(state, p)))
         return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region", near=near)
 
-    def vapour_from_enthalpy(self, p: float, h: float) -> State:
+    def vapour_from_enthalpy(self, p: float, h: float, near: State | None = None) -> State:
         """Vapour, or gas above critical, at `p` (Pa) with enthalpy `h` (J/kg).
+
+        `near` is vapour at a neighbouring place: it saves calls and moves the result by rounding only.
 
         Raises:
             PropertyRangeError: `h` below the dew line, or the state outside the range.
@@ -207,7 +209,7 @@ class Refrigerant(Saturation):
         self._need_finite(h)
         if p > self.p_dew_high:
             return self._from_enthalpy_beyond(p, h)
-        return self._vapour_or_wet(p, "h", h, wet=None)
+        return self._vapour_or_wet(p, "h", h, wet=None, near=near)
 
     def throttled(self, p: float, h: float) -> State:
         """The state at `p` (Pa) after an expansion that keeps enthalpy `h` (J/kg): wet, or liquid, or vapour.
