@@ -73,8 +73,8 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     duties = due(plant.loaded)
     texts[CALENDAR] = calendar(plant.loaded)
     book.add_file(CALENDAR)
-    glance = plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts, _first_day(duties))
-    book.add(glance)
+    coming = {d.id: found[0] for d in plant.systems if (found := next_duties(d, duties, 1))}
+    book.add(plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts, coming))
     book.add(safety_pages.emergency_page(plant))
     for data in plant.systems:
         _system(book, plant, data, documents, archive, duties, texts, store, progress)
@@ -93,10 +93,6 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     book.add(plant_pages.carry_page())
     book.add(plant_pages.search_page())
     return Contents(book, (*documents, *pages, *archive.files), texts, findings, (*left_documents, *left_pages))
-
-
-def _first_day(duties: tuple[Duty, ...]) -> str | None:
-    return next((d.next.isoformat() for d in duties if d.next is not None), None)
 
 
 def _standing(data: SystemData, findings: tuple[Finding, ...], archive: Archive) -> Standing:

@@ -101,6 +101,8 @@ def stated_number(display: Display, value: float, kind: Kind) -> str:
     if kind is Kind.VOLUME_FLOW and abs(three_figures(shown) - shown) <= 0.001 * abs(shown):
         value *= three_figures(shown) / shown if shown else 1.0
         shown = display.convert(value, kind)
+    if abs(shown) >= 100.0 and round(shown, 6).is_integer():
+        digits = 0
     while digits < 4 and abs(round(shown, digits) - shown) > 0.005 * abs(shown):
         digits += 1
     return f"{display.number(value, kind, digits)} {pretty(unit)}".strip()

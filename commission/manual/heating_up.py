@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
@@ -81,7 +82,8 @@ def _at(plant: PlantData, data: SystemData, start: float, air: float | None, tit
         values += [(found.time_with_element, "with the element"), (found.energy_with_element, "with the element")]
     place = "" if air is None else f"-{display_key(air)}"
     rows = tuple(_row(e, way, place, data, plant.display) for e, way in values)
-    return HeatingUp(title, rows, None, found.element_reason, found.warnings)
+    element = re.sub(r"(?<!\w)-(?=\d)", "−", found.element_reason) if found.element_reason else None
+    return HeatingUp(title, rows, None, element, found.warnings)
 
 
 def display_key(air: float) -> str:

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 from commission.manual.book import Sheet, slug
 from commission.manual.documents import DocumentLink
 from commission.manual.facts import DUTY_WORDS, Fact
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.states import Next, Standing, Step, most_urgent, next_step, steps
+from commission.manual.states import Next, Standing, Step, most_urgent, next_step, steps, where_they_stand
+from commission.manual.upkeep_pages import NextDuty
 from commission.quantities import NOMENCLATURE, Display, Kind, methods
 
 
@@ -33,6 +35,7 @@ class GlanceSystem:
     next: Next
     doors: tuple[tuple[str, str], ...]
     because: str | None
+    coming: NextDuty | None
 
 
 def at_a_glance(
@@ -40,7 +43,7 @@ def at_a_glance(
     standings: dict[str, Standing],
     open_items: tuple[OpenLine, ...],
     counts: dict[str, int],
-    first_day: str | None,
+    coming: Mapping[str, NextDuty],
 ) -> Sheet:
     """The front page: what plant this is, where each system stands, what is open, what to do next."""
     shown, urgent = [], []
@@ -66,7 +69,15 @@ def at_a_glance(
             )
         )
         shown.append(
-            GlanceSystem(data.name, _system_line(data, plant.display), steps(standing), step, doors, data.because)
+            GlanceSystem(
+                data.name,
+                _system_line(data, plant.display),
+                steps(standing),
+                step,
+                doors,
+                data.because,
+                coming.get(data.id),
+            )
         )
     site = plant.loaded.plant.plant
     context = {
@@ -74,9 +85,11 @@ def at_a_glance(
         "urgent": most_urgent(urgent),
         "address": site.address,
         "summary": _summary(plant),
+        "place": _place(plant),
         "open_items": open_items,
         "counts": counts,
-        "first_day": first_day,
+        "first_day": min((d.until for d in coming.values()), default=None),
+        "where": where_they_stand(tuple(standings.values())),
     }
     return Sheet("index", plant.name, "plant", "glance.html", context, short="Plant at a glance")
 
@@ -97,11 +110,13 @@ def _system_line(data: SystemData, display: Display) -> str:
 
 def _summary(plant: PlantData) -> str:
     n = len(plant.systems)
-    site = plant.loaded.plant.plant
-    return (
-        f"{n} refrigerating system{'s' if n != 1 else ''}, {plant.display.text(site.altitude, Kind.LENGTH, 0)} above "
-        f"sea level, air pressure {plant.loaded.barometric_pressure / 100:.0f} hPa."
-    )
+    return f"{n} refrigerating system{'s' if n != 1 else ''}"
+
+
+def _place(plant: PlantData) -> str:
+    """Height and air pressure, which every gauge at this site depends on."""
+    altitude = plant.display.text(plant.loaded.plant.plant.altitude, Kind.LENGTH, 0)
+    return f"{altitude} above sea level, air pressure {plant.loaded.barometric_pressure / 100:.0f} hPa"
 
 
 @dataclass(frozen=True, slots=True)

@@ -59,7 +59,8 @@ def read_archive(plant: PlantData) -> Archive:
 
 def title_of(record: FiledRecord) -> str:
     """A visit in a few words."""
-    return record.file.title or record.file.stage.replace("-", " ").replace("_", " ").capitalize()
+    title = record.file.title or record.file.stage.replace("-", " ").replace("_", " ")
+    return title[:1].upper() + title[1:]
 
 
 def visits(archive: Archive, system: str) -> tuple[Visit, ...]:
@@ -156,10 +157,12 @@ def _plus_minus(display: Display, key: str, deviation: float, expanded: float) -
     return f"{_signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
 
 
-def _reading(key: str, r: FrozenReading) -> dict[str, str]:
+def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
+    """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it."""
+    number = any(c.isdigit() for c in r.written[:2])
     return {
         "label": label_of(key),
-        "written": r.written,
+        "written": r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}",
         "where": r.where or "",
         "instrument": r.instrument or "not stated",
     }
@@ -230,7 +233,7 @@ def _shared(plant: PlantData, record: FiledRecord, archive: Archive) -> dict[str
         "name": title_of(record),
         "look": VERDICT_CLASS[record.verdict],
         "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [_reading(k, r) for k, r in filed.conditions.items()],
+        "conditions": [_reading(display, k, r) for k, r in filed.conditions.items()],
         "air": f"{filed.barometric_pressure / 100:.0f} hPa"
         + ("" if filed.barometer_measured else ", not measured: from the altitude"),
         "guarantees": [_guarantee(display, g) for g in filed.guarantees],
@@ -253,7 +256,7 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
     filed = record.filed
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
-    alone = [_reading(k, r) for k, r in filed.readings.items() if k not in filed.deviations]
+    alone = [_reading(display, k, r) for k, r in filed.readings.items() if k not in filed.deviations]
     corrected = archive.corrected.get(record.id)
     context = {
         **_shared(plant, record, archive),

@@ -84,6 +84,8 @@ def figure_row(figure: Figure, data: SystemData, display: Display) -> Row:
         value, unit = f"{figure.value:.0f}", "Pa absolute"
     elif figure.key == "leak_check_months":
         value, unit = f"{figure.value:.0f}", "months"
+    elif figure.key == "co2_equivalent":
+        value, unit = f"{figure.value / 1000:.2f}", "t"
     elif figure.kind is Kind.DURATION and figure.value >= 7200.0:
         value, unit = f"{figure.value / 3600:.0f}", "h"
     elif figure.kind is Kind.PRESSURE_DIFFERENCE and abs(figure.value) >= 5000.0:

@@ -71,13 +71,24 @@ def plural(n: int, one: str, many: str | None = None) -> str:
     return f"{n or 'no'} {words}"
 
 
+def where_they_stand(standings: Sequence[Standing]) -> str:
+    """How far the systems of a plant are, in half a sentence; each system counts once."""
+    counts = {
+        "cannot be calculated": sum(s.because is not None for s in standings),
+        "accepted": sum(s.because is None and s.accepted for s in standings),
+        "to be accepted": sum(s.because is None and s.promised and not s.accepted for s in standings),
+        "with nothing promised": sum(s.because is None and not s.promised and not s.accepted for s in standings),
+    }
+    return ", ".join(f"{n} {words}" for words, n in counts.items() if n)
+
+
 def steps(s: Standing) -> tuple[Step, ...]:
     """The four stations."""
     described = Step("Described", "yes" if s.because is None else "cannot be calculated", s.because is None)
     if s.errors:
         reviewed = Step("Reviewed", f"{plural(s.errors, 'error')} to resolve", False)
     else:
-        reviewed = Step("Reviewed", f"no errors, {plural(s.warnings, 'warning')}", True)
+        reviewed = Step("Reviewed", f"no errors, {plural(s.warnings, 'warning')}" if s.warnings else "no errors", True)
     if s.tests:
         last = s.tests[-1]
         words = "nothing decided" if last.outcome == "none" else last.outcome

@@ -9,9 +9,9 @@ from typing import TYPE_CHECKING
 
 from commission.manual.book import Book, Sheet, slug
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.records_pages import Archive
 
 if TYPE_CHECKING:
+    from commission.manual.records_pages import Archive
     from commission.upkeep import Duty
 
 CALENDAR = "upkeep.ics"
@@ -64,6 +64,11 @@ def _sentence(text: str) -> str:
     return text[:1].upper() + text[1:]
 
 
+def _source(source: str, sureness: str) -> str:
+    """A source and how sure it is; `common practice` is not said twice."""
+    return _sentence(sureness if sureness.startswith(source) else f"{source} ({sureness})")
+
+
 def anchor(duty: Duty) -> str:
     """The anchor of a duty on the page of what is due."""
     return f"due-{slug(duty.key)}"
@@ -74,9 +79,9 @@ def _view(duty: Duty, plant: PlantData, archive: Archive, items: dict[str, set[s
 
     page = next((d.page("checklist") for d in plant.systems if d.id == duty.subject and duty.of == "system"), None)
     known = duty.item is not None and duty.item in items.get(duty.subject, set())
-    sources = [("Interval", f"{duty.source} ({duty.sureness})")]
+    sources = [("Interval", _source(duty.source, duty.sureness))]
     if duty.act_source and duty.act_mark:
-        sources.append(("What to do", f"{duty.act_source} ({MARKS[duty.act_mark]})"))
+        sources.append(("What to do", _source(duty.act_source, MARKS[duty.act_mark])))
     pairs = (
         ("Must read", duty.must_read), ("How", duty.how), ("If not", duty.if_not),
         ("Last done", duty.last.isoformat() if duty.last else None),

@@ -104,7 +104,7 @@
       }
       var word = document.createElement("strong");
       word.className = "say-stop";
-      word.textContent = " overdue today";
+      word.textContent = " overdue";
       place.appendChild(word);
     });
   }
