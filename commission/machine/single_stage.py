@@ -25,6 +25,7 @@ HELD = "head pressure held"
 LOWEST = "head pressure below its setting, control at its lowest"
 LIMITED = "suction pressure limited"
 RESTRICTED = "fixed restriction"
+SHORT = "valve at its limit"
 REGULATED = "suction pressure regulated"
 GAS_SHARE = 0.1
 """Conductance of a surface that only superheats gas, over that of a wetted one (common practice, no source)."""
@@ -37,12 +38,17 @@ class SingleStage(Parts):
     With `head_pressure` the condensing temperature may be held. `greatest_evaporating` is the dew point (K) above which
     the valve closes (maximum operating pressure): the evaporator then starves and its superheat rises. `restriction` is
     the effective area (m2) of an orifice or capillary; the superheat then follows from it, and `superheat` holds where
-    all of the surface is at work.
+    all of the surface is at work. `greatest_feed` is the effective area (m2) of the valve when it is fully open,
+    together with the line and drier before it; None where it never limits. `flash` is the share of vapour (0-1) in what
+    reaches the valve, 0 in a healthy circuit, as from a condenser that lacks refrigerant once the receiver is empty;
+    `subcooling` is of no account then.
     """
 
     head_pressure: HeadPressure | None = None
     greatest_evaporating: float | None = None
     restriction: float | None = None
+    greatest_feed: float | None = None
+    flash: float = 0.0
 
     def balance(self, media: Media, start: Balance | None = None) -> Balance:
         """The balance at this condition; `start` is a neighbouring one that saves work.
@@ -90,7 +96,7 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: as `balance`.
         """
-        circuit = _Circuit(replace(self, restriction=None), media)
+        circuit = _Circuit(replace(self, restriction=None, greatest_feed=None), media)
         balance = _balance(circuit, None)
         return balance.compression.flow / circuit.flow_per_area(
             balance.evaporating_temperature, circuit.second(balance)
@@ -114,6 +120,8 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     """The balance with the suction pressure limited where the free one would be above the limit of the valve."""
     if circuit.machine.restriction is not None:
         return circuit.restricted(start)
+    if circuit.machine.greatest_feed is not None:
+        return _within_feed(circuit, circuit.machine.greatest_feed, start)
     limit = circuit.machine.greatest_evaporating
     if limit is not None and start is not None and start.regime.startswith(LIMITED):
         start = None
@@ -121,6 +129,19 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     if limit is None or balance.evaporating_temperature <= limit:
         return balance
     return circuit.starved(limit)
+
+
+def _within_feed(circuit: _Circuit, area: float, start: Balance | None) -> Balance:
+    """The balance with a valve that passes no more than its full opening: beyond it the evaporator is short of liquid
+    and its superheat rises as with a fixed restriction of that area."""
+    machine, media = circuit.machine, circuit.media
+    short = start is not None and start.regime == SHORT
+    wide = _Circuit(replace(machine, greatest_feed=None), media)
+    balance = _balance(wide, None if short else start)
+    if balance.compression.flow <= area * wide.flow_per_area(balance.evaporating_temperature, wide.second(balance)):
+        return balance
+    narrow = _Circuit(replace(machine, greatest_feed=None, restriction=area), media)
+    return replace(narrow.restricted(start if short else None), regime=SHORT)
 
 
 def _high_side_control(circuit: _Circuit, start: Balance | None) -> Balance:
@@ -173,7 +194,11 @@ class _Circuit(Circuit):
         if condensing not in self._high:
             m, fluid = self.machine, self.machine.refrigerant
             pressure = fluid.dew_pressure(condensing)
-            liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
+            if m.flash:
+                bubble, dew = fluid.bubble(self._bubble_temperature(condensing)), fluid.dew(condensing)
+                liquid = fluid.throttled(pressure, bubble.h + m.flash * (dew.h - bubble.h))
+            else:
+                liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
             discharge = fluid.dew_pressure(condensing + m.discharge_line_loss) if m.discharge_line_loss else pressure
             self._high[condensing] = (discharge + m.gas_pressure, liquid)
         return self._high[condensing]

@@ -2,13 +2,16 @@
 
 from commission.prediction.building import boundary
 from commission.prediction.conditions import ConditionAxis
+from commission.prediction.faults import FAULTS, Fault, with_fault
 from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Prediction, SystemModel, fit
 from commission.prediction.saturation import SaturationRow, saturation_table
 from commission.prediction.surface import operating_surface
 
 __all__ = [
+    "FAULTS",
     "ConditionAxis",
+    "Fault",
     "HeatUp",
     "Prediction",
     "SaturationRow",
@@ -18,4 +21,5 @@ __all__ = [
     "heat_up",
     "operating_surface",
     "saturation_table",
+    "with_fault",
 ]
