@@ -75,6 +75,8 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.owner": ("text", "the owner and how to reach them", ()),
         "words.contractor": ("text", "the contractor and how to reach them", ()),
         "words.other_season": ("text", "how far another season's condition lies from the test", ()),
+        "words.design_days": ("text", "expected discharge on the hottest and coldest design days", ()),
+        "words.flow_stages": ("text", "air flow of each stage of the fan", ()),
         "words.levels": ("text", "levels in the air that matter to people", ()),
         "words.highest_discharge": ("text", "highest discharge temperature by common practice", ()),
         "only.flammable": ("text", "nothing, but known only for a flammable refrigerant: keeps [[a sentence]]", ()),

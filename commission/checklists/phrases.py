@@ -55,6 +55,24 @@ def _other_season(facts: Facts) -> str:
     return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
 
 
+def _design_days(facts: Facts) -> str | None:
+    """What the discharge shows on the design days that could be calculated; a sealed unit has no gauge there."""
+    key = "discharge_temperature" if facts.system.sealed else "discharge_pressure"
+    climate = facts.loaded.plant.plant.climate
+    texts = []
+    for word, outdoors in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
+        prediction = facts.predictions.get(word)
+        if prediction is not None and outdoors is not None and key in prediction.expected:
+            shown = facts.display.text(prediction.expected[key].value, NOMENCLATURE[key].kind)
+            texts.append(f"{shown} at {facts.display.text(outdoors, Kind.TEMPERATURE)} outdoors")
+    return ", ".join(texts) or None
+
+
+def _flow_stages(facts: Facts) -> str | None:
+    stages = facts.system.heat_source.flow_stages
+    return ", ".join(f"{name} {facts.display.text(v, Kind.VOLUME_FLOW)}" for name, v in stages.items()) or None
+
+
 def _highest_discharge(facts: Facts) -> str | None:
     components = facts.substance.components
     if components == ("R-744",):
@@ -243,6 +261,8 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.owner": _person("owner"),
         "words.contractor": _person("contractor"),
         "words.other_season": lambda f, _: _other_season(f),
+        "words.design_days": lambda f, _: _design_days(f),
+        "words.flow_stages": lambda f, _: _flow_stages(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),
         "only.flammable": lambda f, _: "" if f.substance.flammable else None,

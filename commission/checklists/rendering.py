@@ -52,8 +52,6 @@ def show(value: float, kind: Kind, display: Display) -> str:
         return f"{value:.0f} s"
     if kind is Kind.NUMBER:
         return f"{value:g}"
-    if kind is Kind.VOLUME_FLOW and display.convert(value, kind) < 10:
-        return display.text(value, kind, 2)
     if kind is Kind.DENSITY and value < 1 and display.system == "metric":
         return f"{value * 1000:.3g} g/m³"
     return display.text(value, kind)
