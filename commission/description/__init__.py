@@ -16,7 +16,8 @@ from commission.description.plant import LoadedPlant, load_plant
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.description.reading import ReadFile, read_yaml
 from commission.description.reference import KeyRow, json_schema, key_reference
-from commission.description.schedule import from_schedule, schedule_columns
+from commission.description.schedule import from_schedule
+from commission.description.schedule_headings import schedule_columns
 from commission.description.starting import DUTIES, new_plant
 
 __all__ = [

@@ -7,10 +7,8 @@ message names row, column and heading of the schedule.
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
-from functools import cache
-from importlib.resources import files
 from pathlib import Path
 from typing import Any
 
@@ -21,37 +19,21 @@ from commission.description.meaning import problems_of_meaning
 from commission.description.model import Plant
 from commission.description.plant import site_pressure
 from commission.description.positions import DescriptionError, KeyPath, Mark, Positions, dotted
-from commission.description.reading import read_yaml
 from commission.description.reference import SCHEMA_FILE
+from commission.description.schedule_cells import Numbers, dry_and_wet, numbers_of, quantity_text
+from commission.description.schedule_duties import duty_described, duty_named, meant_key, plain, usual_media
+from commission.description.schedule_headings import Column, at_cell, is_heading, main_headings, read_columns
 from commission.description.schedule_text import description_text
 from commission.description.starting import schema_text, write_new
-from commission.description.tables import Cell, Table, read_table
-from commission.errors import Problem, nearest, shorten
-from commission.quantities import QuantityError, parse_number
+from commission.description.tables import WESTERN, Cell, Table, read_table
+from commission.errors import Problem, shorten
+from commission.quantities import Kind, QuantityError, parse
 
-_BRACKETS = re.compile(r"(.*?)[\[(]([^\[\]]*)[\])]\s*", re.DOTALL)
 _US_UNITS = re.compile(r"°?F\b|cfm|gpm|Btu|MBH|psi|\btons?\b|\bft|\blb", re.IGNORECASE)
 _METRIC_UNITS = re.compile(r"°?C\b|m[3³]|\b[lL]/|\bkg|\bbar\b|Pa\b|\bm[2²]?\b")
-_SHORT_WORDS = {"db": "dry bulb", "wb": "wet bulb", "dry-bulb": "dry bulb", "wet-bulb": "wet bulb", "temp": ""}
-
-_DUTY_WORDS = {
-    "cold_storage": ("cold storage", "cold room", "freezer", "freezer room", "walk in cooler", "walk in freezer",
-                     "refrigeration", "cooler"),
-    "comfort_cooling": ("comfort cooling", "air conditioning", "air conditioner", "ac", "dx cooling", "split",
-                        "split system", "rooftop unit", "cooling"),
-    "liquid_cooling": ("liquid cooling", "chiller", "water chiller", "chilled water"),
-    "space_heating": ("space heating", "heat pump", "heating"),
-    "water_heating": ("water heating", "hot water", "heat pump water heater", "domestic hot water", "dhw"),
-}  # fmt: skip
-_MEDIA_OF_DUTY = {
-    "cold_storage": ("air", "air"),
-    "comfort_cooling": ("air", "air"),
-    "liquid_cooling": ("water", "air"),
-    "space_heating": ("air", "water"),
-    "water_heating": ("air", "water"),
-}
-"""Usual media, taken where the schedule has no column for them and written into the description to be looked at."""
-
+_ELECTRICAL = re.compile(r"([0-9]{3}) *V? *[-/,] *([13]) *(?:ph)? *[-/,] *(?:50|60) *(?:Hz)?", re.IGNORECASE)
+_SENTENCE = re.compile(r"[:;,]|\.\s|\s\S+\s|^.{21}|^(?:notes?|remarks?|legend|end)$", re.IGNORECASE)
+_SUMS = {"total", "totals", "sum", "subtotal", "sub total", "grand total"}
 
 _OUTDOORS = {
     "outdoors",
@@ -70,18 +52,9 @@ _OUTDOORS = {
 
 _WORDS = (
     "id", "name", "duty", "serves", "refrigerant", "installed_on", "nameplate.maker_type", "nameplate.serial",
-    "nameplate.year", "nameplate.phases", "point.source", "note",
+    "nameplate.year", "nameplate.phases", "electrical", "point.source", "note",
 )  # fmt: skip
 """Columns of words, whose cells are taken as they stand."""
-
-
-@dataclass(frozen=True, slots=True)
-class Column:
-    """One column: what it holds, its heading as written, and the unit of its bare numbers."""
-
-    key: str
-    heading: Cell
-    unit: str
 
 
 @dataclass(slots=True)
@@ -96,6 +69,9 @@ class _Sheet:
     lines: dict[str, int] = field(default_factory=dict)
     notes: dict[str, list[str]] = field(default_factory=dict)
     us: int = 0
+    numbers: Numbers = field(default_factory=Numbers)
+    remarks: list[str] = field(default_factory=list)
+    unknown: list[str] = field(default_factory=list)
 
     def weigh(self, text: str) -> None:
         """Count a unit towards US or metric, to print the manual as the schedule is written."""
@@ -110,7 +86,7 @@ def from_schedule(schedule: Path | str, folder: Path | str) -> tuple[Path, ...]:
         InputError: a file that is there already, or a folder that cannot be written to.
     """
     schedule, folder = Path(schedule), Path(folder)
-    table = read_table(schedule, schedule.name, _is_heading)
+    table = read_table(schedule, schedule.name, is_heading)
     sheet = _read(table, schedule.name)
     if not sheet.systems:
         raise DescriptionError(*bounded(sheet.problems))
@@ -122,20 +98,9 @@ def from_schedule(schedule: Path | str, folder: Path | str) -> tuple[Path, ...]:
     if problems:
         raise DescriptionError(*bounded([_with_heading(p, sheet) for p in problems]))
     titles = [" ".join(cell.text for cell in row if cell.text) for row in table.titles]
-    text = description_text(data, schedule.name, sheet.lines, sheet.notes, titles)
+    doubt = [f"Read as {WESTERN}: look at umlauts and accents."] if table.encoding == WESTERN else []
+    text = description_text(data, schedule.name, sheet.lines, sheet.notes, [*titles, *sheet.remarks, *doubt])
     return write_new(folder, {PLANT_FILE: text, SCHEMA_FILE: schema_text()})
-
-
-def _is_heading(texts: Sequence[str]) -> bool:
-    """A row of headings names the systems and at least one more thing that is known."""
-    keys = {columns_by_heading().get(_plain(_split(text)[0])) for text in texts} - {None}
-    return "id" in keys and len(keys) > 1
-
-
-def _split(heading: str) -> tuple[str, str]:
-    """A heading and the unit in its brackets."""
-    match = _BRACKETS.fullmatch(heading)
-    return (match[1], match[2].strip()) if match else (heading, "")
 
 
 def _with_heading(problem: Problem, sheet: _Sheet) -> Problem:
@@ -144,95 +109,53 @@ def _with_heading(problem: Problem, sheet: _Sheet) -> Problem:
         word = main_headings().get(problem.path.rpartition(".")[2])
         wanted = f"a column headed {word}" if word else None
         return replace(problem, allowed="; ".join(filter(None, (wanted, problem.allowed))) or None)
+    if problem.path.endswith(".rated_points.0") and problem.allowed:
+        headings = [main_headings().get(key, key) for key in re.split(r", | or ", problem.allowed)]
+        side = "heat_sink" if "heat_sink" in problem.allowed else "heat_source"
+        system = sheet.systems[problem.path.split(".", 1)[1].removesuffix(".rated_points.0")]
+        if "temperature" in problem.allowed and system[side]["medium"] == "water":
+            headings += ["water in", "water out"]
+        allowed = f"a column headed {' or '.join(headings)}"
+        if sheet.unknown:
+            allowed += f"; columns that were not understood: {', '.join(map(shorten, sheet.unknown))}"
+        return replace(problem, path=problem.path.removesuffix(".rated_points.0"), allowed=allowed)
     heading = sheet.headings.get((problem.line or 0, problem.column or 0))
     return replace(problem, path=f"column {shorten(heading, 60)}") if heading else problem
 
 
-def main_headings() -> Mapping[str, str]:
-    """The heading named first for each key path, such as `duty` or `sink inlet`, by the last part of the path."""
-    return {key.rpartition(".")[2]: headings[0] for key, headings in schedule_columns().items()}
-
-
-@cache
-def schedule_columns() -> Mapping[str, list[str]]:
-    """What each column may hold (a key path of a description) and the headings that mean it, for the manual too."""
-    text = (files("commission.description") / "schedule_columns.yaml").read_text(encoding="utf-8")
-    book: Mapping[str, list[str]] = read_yaml(text, "schedule_columns.yaml").data
-    return book
-
-
-@cache
-def columns_by_heading() -> Mapping[str, str]:
-    """Every known heading in its plain form, with what it means."""
-    table: dict[str, str] = {}
-    for key, headings in schedule_columns().items():
-        for heading in [*headings, *([key.partition(".")[2]] if "." in key else [])]:
-            table.setdefault(_plain(heading), key)
-    return table
-
-
-def _plain(heading: str) -> str:
-    words = re.sub(r"[\s_.,;:/\-]+", " ", heading.casefold()).split()
-    words = [_SHORT_WORDS.get(word, word) for word in words]
-    return " ".join(w for w in words if w and w != "temperature") or " ".join(words)
-
-
-def _columns(table: Table, sheet: _Sheet) -> tuple[list[Column], int]:
-    """The meaning of each column, and how many rows below the headings are a row of units.
-
-    A heading that is nearly a known one is a problem; any other unknown column is kept as notes. Two columns may mean
-    the same (air and water side of different machines), but not in one row.
-    """
-    known = columns_by_heading()
-    units = _unit_row(table)
-    found: list[Column] = []
-    for number, cell in enumerate(table.heading):
-        word, unit = _split(cell.text)
-        if units and number < len(units) and units[number].text:
-            unit = units[number].text.strip("[]() ")
-        key = known.get(_plain(word))
-        if key is None:
-            near = nearest(_plain(word), known, cutoff=0.8)
-            if near:
-                allowed = ", ".join(headings[0] for headings in schedule_columns().values())
-                sheet.problems.append(_at(cell, "this heading is not known", allowed=allowed, near=near))
-            key = "note"
-        sheet.weigh(unit)
-        found.append(Column(key, cell, unit))
-    return found, 1 if units else 0
-
-
-def _at(cell: Cell, message: str, *, allowed: str | None = None, near: str | None = None) -> Problem:
-    """A problem of one cell, shown as it is written."""
-    place = cell.place
-    return Problem(message, place.file, place.line, place.column, "", cell.text, allowed, near)
-
-
-def _unit_row(table: Table) -> tuple[Cell, ...] | None:
-    """The row right below the headings, where no cell holds a digit: then it holds units."""
-    first = table.rows[0] if table.rows else ()
-    id_column = next((n for n, c in enumerate(table.heading) if columns_by_heading().get(_plain(c.text)) == "id"), None)
-    if id_column is None or not first or (id_column < len(first) and first[id_column].text):
-        return None
-    return None if any(re.search(r"[4-9]|[0-9]{2}", cell.text) for cell in first) else first
-
-
 def _read(table: Table, file: str) -> _Sheet:
     """The rows of a schedule as plain data of systems, with the place of every cell."""
-    sheet = _Sheet()
+    texts = (cell.text for row in table.rows for cell in row)
+    sheet = _Sheet(numbers=numbers_of(texts, semicolons=table.delimiter == ";"))
     top = table.heading[0].place
     for path in ((), ("plant",), ("systems",)):
         sheet.positions.marks[path] = Mark(top, top, None)
-    columns, skip = _columns(table, sheet)
+    columns, skip, problems = read_columns(table)
+    sheet.problems += problems
+    for column in columns:
+        sheet.weigh(column.unit)
     if not any(c.key == "id" for c in columns):
         allowed = "a column headed tag, system, mark or unit"
         sheet.problems.append(Problem("there is no column that names the systems", file, top.line, 1, allowed=allowed))
         return sheet
     if not table.rows[skip:]:
         sheet.problems.append(Problem("there is no system below the headings", file, top.line, 1))
+    sheet.unknown = [c.heading.text for c in columns if c.key == "note"]
     for row in table.rows[skip:]:
-        _row([(c, cell) for c, cell in zip(columns, row, strict=False) if cell.text], row, sheet)
+        cells = [(c, cell) for c, cell in zip(columns, row, strict=False) if cell.text]
+        if _is_remark(cells, begun=bool(sheet.remarks)):
+            sheet.remarks.append(" ".join(cell.text for _, cell in cells))
+        else:
+            _row(cells, row, sheet)
     return sheet
+
+
+def _is_remark(cells: Sequence[tuple[Column, Cell]], *, begun: bool) -> bool:
+    """Whether a row is no system: a sum, a heading between rows, or a note below the table, which stands alone."""
+    first = cells[0][1].text
+    if plain(first) in _SUMS:
+        return True
+    return len(cells) == 1 and (begun or cells[0][0].key != "id" or _SENTENCE.search(first) is not None)
 
 
 def _row(cells: list[tuple[Column, Cell]], row: tuple[Cell, ...], sheet: _Sheet) -> None:
@@ -244,52 +167,110 @@ def _row(cells: list[tuple[Column, Cell]], row: tuple[Cell, ...], sheet: _Sheet)
         return
     identity = cell.text
     if identity in sheet.systems:
-        sheet.problems.append(_at(cell, f"this system stands in line {sheet.lines[identity]} already"))
+        sheet.problems.append(at_cell(cell, f"this system stands in line {sheet.lines[identity]} already"))
         return
     path: KeyPath = ("systems", identity)
     sheet.lines[identity] = start.line
     sheet.positions.marks[path] = Mark(cell.place, cell.place, None)
     system: dict[str, Any] = {}
     sheet.systems[identity] = system
-    taken: dict[str, str] = {}
+    duty = _duty(cells, system, path, sheet)
+    media = _media(cells, duty)
+    taken: dict[str, tuple[str, str]] = {}
     for column, one in cells:
         sheet.headings[one.place.line, one.place.column] = column.heading.text
-        other = taken.setdefault(column.key, column.heading.text)
-        if other != column.heading.text and column.key != "note":
-            message = f"this says the same as the column {shorten(other, 60)!r}; fill in one of them"
-            sheet.problems.append(_at(one, message))
-            continue
-        text = _text(column, one.text)
-        if column.key == "note":
-            sheet.notes.setdefault(identity, []).append(f"{column.heading.text}: {text}")
-            continue
-        if not column.unit and text[:1].isdigit():
-            sheet.weigh(text)
-        _put(sheet, system, path, column.key, text, one)
-    duty = system.get("duty", "")
-    media = _MEDIA_OF_DUTY.get(duty, ("air", "air"))  # an unknown duty is a problem of its own
+        _cell(column, one, meant_key(_by_cell(column, one), duty, media), taken, sheet, identity)
     for side, medium in zip(("heat_source", "heat_sink"), media, strict=True):
         system[side] = {"medium": medium, **system.get(side, {})}
 
 
-def _text(column: Column, text: str) -> str:
-    """The cell as a description would have it: a bare number takes the unit of its column; words of the trade."""
-    if column.key == "duty":
-        word = _plain(text)
-        return next((duty for duty, words in _DUTY_WORDS.items() if word in words or word == _plain(duty)), text)
-    if column.key.endswith(".medium"):
-        return text.lower()
-    if column.key in _WORDS or column.key.startswith("space_"):
-        return text
+def _duty(cells: Sequence[tuple[Column, Cell]], system: dict[str, Any], path: KeyPath, sheet: _Sheet) -> str:
+    """The duty of a row: of its own column, else as the description of the system says it in words."""
+    duty = next((duty_named(cell.text) for column, cell in cells if column.key == "duty"), "")
+    if duty:
+        return duty
+    for column, cell in cells:
+        told = duty_described(cell.text) if column.key == "name" else None
+        if told:
+            system["duty"] = told
+            sheet.positions.marks[*path, "duty"] = Mark(cell.place, cell.place, cell.text)
+            sheet.notes.setdefault(str(path[1]), []).append(
+                f"duty: read from {cell.text!r}; correct it if it is another"
+            )
+            return told
+    return ""
+
+
+def _media(cells: Sequence[tuple[Column, Cell]], duty: str) -> tuple[str, str]:
+    """Source and sink medium: of their own columns, else the usual ones of the duty."""
+    written = {column.key: cell.text.lower() for column, cell in cells}
+    source, sink = usual_media(duty)
+    return written.get("heat_source.medium", source), written.get("heat_sink.medium", sink)
+
+
+def _by_cell(column: Column, cell: Cell) -> str:
+    """The key of a column, or of this cell: a temperature below the heading `room` is that of its air."""
+    if column.key.startswith("space_"):
+        try:
+            parse(cell.text, Kind.TEMPERATURE)
+        except QuantityError:
+            return column.key
+        return "point.room_air"
+    return column.key
+
+
+def _cell(
+    column: Column, cell: Cell, key: str | None, taken: dict[str, tuple[str, str]], sheet: _Sheet, identity: str
+) -> None:
+    """Put one cell where it belongs: its key path, several of them, or the notes."""
+    path: KeyPath = ("systems", identity)
     try:
-        rest = parse_number(text)[1]
+        text = _text(column.unit, key or "note", cell.text, sheet.numbers)
+    except QuantityError as error:
+        sheet.problems.append(at_cell(cell, error.problems[0].message))
+        return
+    parts = {key or "note": text}
+    pair = dry_and_wet(cell.text, column.unit) if key and key.endswith("let_temperature") else None
+    if pair and key:
+        parts = {key: pair[0], re.sub("_(in|out)let_temperature$", "_wet_bulb", key): pair[1]}
+    power = _ELECTRICAL.fullmatch(cell.text) if key == "electrical" else None
+    if power:
+        parts = {"nameplate.voltage": f"{power[1]} V", "nameplate.phases": power[2]}
+    for one, value in parts.items():
+        other, before = taken.setdefault(one, (column.heading.text, value))
+        if other != column.heading.text and one != "note" and not _same_power(before, value):
+            message = f"this says the same as the column {shorten(other, 60)!r}; fill in one of them"
+            sheet.problems.append(at_cell(cell, message))
+        elif one in ("note", "electrical") or other != column.heading.text:
+            sheet.notes.setdefault(identity, []).append(f"{column.heading.text}: {cell.text}")
+        else:
+            if not column.unit and value[:1].isdigit():
+                sheet.weigh(value)
+            _put(sheet, sheet.systems[identity], path, one, value, cell)
+
+
+def _same_power(one: str, other: str) -> bool:
+    """Whether two cells say one capacity in two units, such as 24 MBH and 2 tons."""
+    try:
+        first, second = parse(one, Kind.POWER), parse(other, Kind.POWER)
     except QuantityError:
-        return f"{text} {column.unit}".strip() if text[-1:].isdigit() else text
-    number = text[: len(text) - len(rest)].strip().replace(",", ".")
-    unit = rest or column.unit
-    if column.key.endswith("_capacity") and unit.lower() in ("ton", "tons"):
-        unit = "refrigeration tons"  # no other ton is a capacity
-    return f"{number} {unit}".strip()
+        return False
+    return abs(first - second) <= 0.02 * max(abs(first), abs(second))
+
+
+def _text(unit: str, key: str, text: str, numbers: Numbers) -> str:
+    """The cell as a description would have it: a bare number takes the unit of its column; words of the trade.
+
+    Raises:
+        QuantityError: the number is grouped so that it can mean two things.
+    """
+    if key == "duty":
+        return duty_named(text)
+    if key.endswith(".medium"):
+        return text.lower()
+    if key in _WORDS or key.startswith("space_"):
+        return text
+    return quantity_text(text, unit, numbers, capacity=key.endswith("_capacity"))
 
 
 def _put(sheet: _Sheet, system: dict[str, Any], path: KeyPath, key: str, text: str, cell: Cell) -> None:
@@ -300,7 +281,7 @@ def _put(sheet: _Sheet, system: dict[str, Any], path: KeyPath, key: str, text: s
     if key.startswith("space_"):
         part = key.removeprefix("space_")
         space = re.sub(r"[^\w -]+", " ", text).strip() or text
-        outdoors = {"outdoors": "yes"} if _OUTDOORS & set(_plain(text).split()) else {}
+        outdoors = {"outdoors": "yes"} if _OUTDOORS & set(plain(text).split()) else {}
         sheet.spaces.setdefault(space, {"name": text, **outdoors})
         system.setdefault("spaces", {})[part] = space
         inside = ("spaces", part)

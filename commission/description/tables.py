@@ -15,6 +15,10 @@ from commission.errors import Problem
 MAX_ROWS = 2000
 MAX_COLUMNS = 200
 _MOST_TITLES = 20
+WESTERN = "Windows-1252"
+"""The encoding in which spreadsheets of western Europe save a CSV, unless UTF-8 is asked for."""
+_ZIP = b"PK\x03\x04"
+_SAVE_AS = "in the spreadsheet, save the sheet as CSV (UTF-8)"
 _DELIMITERS = (";", "\t", ",")
 
 
@@ -34,13 +38,15 @@ class Table:
     rows: tuple[tuple[Cell, ...], ...]
     content: bytes
     titles: tuple[tuple[Cell, ...], ...] = ()
+    delimiter: str = ","
+    encoding: str = "UTF-8"
 
 
 IsHeading = Callable[[Sequence[str]], bool]
 
 
 def read_table(path: Path, file: str, is_heading: IsHeading | None = None) -> Table:
-    """Read a CSV with a heading row: UTF-8 (or UTF-16 with its mark), separated by semicolon, tabulator or comma.
+    """Read a CSV with a heading row: UTF-8, UTF-16 with its mark or Windows-1252; semicolons, tabulators or commas.
 
     `is_heading` tells a heading row from the titles that may stand above it, in the first lines; without it, or where
     none is one, the first row that holds anything is the heading.
@@ -49,7 +55,7 @@ def read_table(path: Path, file: str, is_heading: IsHeading | None = None) -> Ta
         DescriptionError: not readable, no heading, rows longer than the heading, or too large.
     """
     content = read_bytes(path, file)
-    text = _text(content, file)
+    text, encoding = _text(content, file)
     lines = text.splitlines()
     if not lines or not text.strip():
         raise DescriptionError(Problem("the file is empty", file, 1, 1))
@@ -81,9 +87,13 @@ def read_table(path: Path, file: str, is_heading: IsHeading | None = None) -> Ta
             found.append(cells)
     except csv.Error as error:
         raise DescriptionError(*problems, Problem(f"this is not CSV: {error}", file, line, 1)) from None
+    if problems and is_heading is not None and not is_heading([cell.text for cell in found[0]]):
+        allowed = "a heading row with a column headed tag, system, mark or unit; below it one row for each system"
+        message = f"no row of headings was found in the first {_MOST_TITLES} lines"
+        raise DescriptionError(Problem(message, file, 1, 1, allowed=allowed))
     if problems:
         raise DescriptionError(*problems)
-    return Table(found[0], tuple(found[1:]), content, tuple(titles))
+    return Table(found[0], tuple(found[1:]), content, tuple(titles), delimiter, encoding)
 
 
 def _start(lines: list[str], is_heading: IsHeading | None) -> tuple[str, int]:
@@ -103,13 +113,24 @@ def _split(line: str, delimiter: str) -> list[str]:
         return []
 
 
-def _text(content: bytes, file: str) -> str:
+def _text(content: bytes, file: str) -> tuple[str, str]:
+    """The text of a table and its encoding: UTF-16 with its mark, UTF-8, or what spreadsheets save in the west."""
     if content.startswith((b"\xff\xfe", b"\xfe\xff")):
         try:
-            content = content.decode("utf-16").encode()
+            return decode(content.decode("utf-16").encode(), file), "UTF-16"
         except (UnicodeDecodeError, UnicodeEncodeError):
             raise DescriptionError(Problem("this is not text in UTF-16, as its first bytes say", file, 1, 1)) from None
-    return decode(content, file)
+    try:
+        content.decode("utf-8")
+    except UnicodeDecodeError:
+        if content.startswith(_ZIP):
+            message = "this is a workbook, not a table as text"
+            raise DescriptionError(Problem(message, file, 1, 1, allowed=_SAVE_AS)) from None
+        try:
+            return decode(content.decode("cp1252").encode(), file), WESTERN
+        except UnicodeDecodeError:
+            pass  # decode names the first byte that is not UTF-8
+    return decode(content, file), "UTF-8"
 
 
 def _delimiter(heading: str) -> str:
