@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 
 from commission.errors import InputError, Problem, nearest
 from commission.prediction.building import Plan, once_through
@@ -96,6 +97,35 @@ def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> Condit
     if side == "heat_source":
         return ConditionAxis(key, rated, rated - 6.0, rated + 12.0)
     return ConditionAxis(key, rated, rated - 15.0, rated + 20.0)
+
+
+FLOW, OUTDOOR = "heat_sink_outlet_temperature", "heat_source_inlet_temperature"
+
+
+def with_weather_curve(
+    facts: Facts, axes: Mapping[str, ConditionAxis], given: Mapping[str, float]
+) -> tuple[Mapping[str, float], tuple[str, ...]]:
+    """The given conditions, with the flow temperature of the weather curve where the outdoor temperature is given and
+    neither temperature of the heating water is; and a sentence that says so.
+
+    The curve is straight between its points and level beyond them, within its lowest and highest flow temperature.
+    """
+    curve = facts.system.controls.weather_curve
+    told = {FLOW, _other_end(FLOW)} & set(given)
+    if curve is None or told or facts.source_liquid is not None or FLOW not in axes or OUTDOOR not in given:
+        return given, ()
+    points = sorted((p.outdoor, p.flow) for p in curve.points)
+    outdoor = min(max(given[OUTDOOR], points[0][0]), points[-1][0])
+    flow = points[0][1]
+    for (cold, hot), (warm, cool) in pairwise(points):
+        if cold <= outdoor <= warm and warm > cold:
+            flow = hot + (cool - hot) * (outdoor - cold) / (warm - cold)
+    if curve.lowest_flow is not None:
+        flow = max(flow, curve.lowest_flow)
+    if curve.highest_flow is not None:
+        flow = min(flow, curve.highest_flow)
+    note = f"{NOMENCLATURE[FLOW].label.lower()} {flow - KELVIN:.1f} °C is that of the weather curve, it was not given"
+    return {**given, FLOW: flow}, (note,)
 
 
 def complete(

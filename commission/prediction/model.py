@@ -10,7 +10,7 @@ from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
-from commission.prediction.conditions import ConditionAxis, axes_of, complete
+from commission.prediction.conditions import ConditionAxis, axes_of, complete, with_weather_curve
 from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
@@ -29,7 +29,8 @@ RATED_FIGURES = ("cooling_capacity", "net_cooling_capacity", "heating_capacity",
 class Prediction:
     """What one system should read at one condition. All values SI, pressures absolute.
 
-    `filled` lists the conditions that were not given and taken from the rated one. `parts` holds, for each expected
+    `filled` lists the conditions that were not given and taken from the rated one; a flow temperature that was taken
+    from the weather curve is not among them but in a sentence of `warnings`. `parts` holds, for each expected
     key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root sum of
     squares. `not_calculated` gives the reason for each quantity that has no value.
     """
@@ -175,7 +176,9 @@ class SystemModel:
     def _complete(
         self, conditions: Mapping[str, float] | None
     ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
-        return complete(self.condition_axes, conditions, self.facts.pressure)
+        given, note = with_weather_curve(self.facts, self.condition_axes, conditions or {})
+        whole, filled, outside = complete(self.condition_axes, given, self.facts.pressure)
+        return whole, filled, (*note, *outside)
 
     def _nearest(self, whole: Mapping[str, float], error: NotCalculatedError) -> NotCalculatedError:
         """The reason why there is no balance, with the nearest condition on the way from the rated one that has one."""
