@@ -9,7 +9,7 @@ import click
 from commission.cli.options import plant_argument, say
 
 
-@click.command(name="build", short_help="Build the manual and print its first page.")
+@click.command(name="build")
 @plant_argument
 @click.option("--out", type=click.Path(path_type=Path), help="Folder of the manual; PLANT/manual unless said.")
 @click.option("--serve", is_flag=True, help="Serve it on this computer and rebuild when the plant folder changes.")

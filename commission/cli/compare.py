@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     from commission.records import FiledRecord
 
 
-@click.command(name="compare", short_help="Judge a visit's readings without filing them.")
+@click.command(name="compare")
 @plant_argument
 @click.argument("record", type=click.Path(path_type=Path))
 @json_option

@@ -5,15 +5,21 @@ from __future__ import annotations
 import importlib
 import os
 import sys
-import traceback
 from collections.abc import Sequence
 
 import click
 
 from commission import __version__
-from commission.errors import CommissionError
 
-VERBS = ("new", "review", "predict", "compare", "record", "build")
+VERBS = {
+    "new": "Write a first description to work on.",
+    "review": "What in a description cannot be, is unlikely, or missing.",
+    "predict": "What each gauge, probe and meter should read.",
+    "compare": "Judge a visit's readings without filing them.",
+    "record": "File a visit for good, its verdict frozen.",
+    "build": "Build the manual and print its first page.",
+}
+"""The verbs in the order of their use, each in one line: here, so that `--help` need not load them."""
 INTERNAL_FAULT = 70  # EX_SOFTWARE of sysexits.h: not the user's mistake, and none of the documented results
 
 
@@ -28,6 +34,10 @@ class Verbs(click.Group):
             return None
         command: click.Command = importlib.import_module(f"commission.cli.{cmd_name}").command
         return command
+
+    def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
+        with formatter.section("Commands"):
+            formatter.write_dl(list(VERBS.items()))
 
     def resolve_command(
         self, ctx: click.Context, args: list[str]
@@ -62,6 +72,23 @@ def main(arguments: Sequence[str] | None = None) -> None:
     # of saturation approximations, which this package replaces by its own saturation lines.
     os.environ.setdefault("COOLPROP_DISABLE_SUPERANCILLARIES_ENTIRELY", "1")
     try:
+        _run(arguments)
+    except BrokenPipeError:
+        sys.stderr.close()
+        sys.exit(0)
+    except Exception as fault:
+        click.echo(f"internal fault: {type(fault).__name__}: {fault}", err=True)
+        click.echo("This is a fault of the program, not of your files. COMMISSION_TRACEBACK=1 shows where.", err=True)
+        if os.environ.get("COMMISSION_TRACEBACK"):
+            import traceback
+
+            traceback.print_exc()
+        sys.exit(INTERNAL_FAULT)
+
+
+def _run(arguments: Sequence[str] | None) -> None:
+    """Run, and turn every error that a person can mend into its messages and exit code."""
+    try:
         # Out of standalone mode click returns the exit code of `Exit` instead of leaving with it.
         code = cli.main(
             args=None if arguments is None else list(arguments), prog_name="commission", standalone_mode=False
@@ -73,19 +100,14 @@ def main(arguments: Sequence[str] | None = None) -> None:
     except click.ClickException as error:
         error.show()
         sys.exit(error.exit_code)
-    except CommissionError as error:
+    except Exception as error:
+        from commission.errors import CommissionError
+
+        if not isinstance(error, CommissionError):
+            raise
         for problem in error.problems:
             click.echo(str(problem), err=True)
         count = len(error.problems)
         if count > 1:
             click.echo(f"{count} problems", err=True)
         sys.exit(error.exit_code)
-    except BrokenPipeError:
-        sys.stderr.close()
-        sys.exit(0)
-    except Exception as fault:
-        click.echo(f"internal fault: {type(fault).__name__}: {fault}", err=True)
-        click.echo("This is a fault of the program, not of your files. COMMISSION_TRACEBACK=1 shows where.", err=True)
-        if os.environ.get("COMMISSION_TRACEBACK"):
-            traceback.print_exc()
-        sys.exit(INTERNAL_FAULT)

@@ -11,7 +11,7 @@ from commission.cli.options import say
 DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", "water_heating")
 
 
-@click.command(name="new", short_help="Write a first description to work on.")
+@click.command(name="new")
 @click.argument("folder", metavar="DIR", type=click.Path(path_type=Path))
 @click.option("--duty", type=click.Choice(DUTIES), help="What the system does.")
 @click.option(

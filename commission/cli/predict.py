@@ -20,7 +20,7 @@ if TYPE_CHECKING:
 COVERAGE = 2.0  # expanded uncertainty as shown and printed: about 95 % (JCGM 100:2008, 6.2 and G.6.6)
 
 
-@click.command(name="predict", short_help="What each gauge, probe and meter should read.")
+@click.command(name="predict")
 @plant_argument
 @click.option("--system", metavar="ID", help="Only this system.")
 @click.option(

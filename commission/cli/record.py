@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from commission.description import LoadedPlant
 
 
-@click.command(name="record", short_help="File a visit for good, its verdict frozen.")
+@click.command(name="record")
 @plant_argument
 @click.argument("file", type=click.Path(path_type=Path), required=False)
 @click.option("--attach", type=click.Path(path_type=Path), help="Folder with the files that the record names.")

@@ -10,7 +10,7 @@ import click
 from commission.cli.options import plant_argument
 
 
-@click.command(name="review", short_help="What in a description cannot be, is unlikely, or missing.")
+@click.command(name="review")
 @plant_argument
 @click.option(
     "--visit",
