@@ -15,7 +15,7 @@ from commission.acceptance.decision import Decision
 from commission.acceptance.evaluation import Evaluation, evaluate
 from commission.acceptance.guarantee import Terms, carry, terms_of
 from commission.acceptance.instruments import Reading
-from commission.acceptance.judgement import GuaranteeVerdict, verdict
+from commission.acceptance.judgement import GuaranteeVerdict, coarse, verdict
 from commission.acceptance.routes import Refusal
 from commission.quantities import NOMENCLATURE, Explained, Kind
 
@@ -46,14 +46,17 @@ class ReadingCapability:
 class GuaranteeCapability:
     """One guarantee: could it be decided if the plant read as expected, and if not, what would decide it.
 
-    `decided` is about a plant that reads exactly what the design model expects. `change` is the smallest change of the
-    test that would decide it, None where none is needed or none would do.
+    `decided` is about a plant that reads exactly what the design model expects. By the simple rule any reading decides,
+    unless the contract states a largest uncertainty that the test exceeds; `coarse` then says where the test is coarser
+    than the tolerance it is meant to hold. `change` is the smallest change of the test that would decide it, None where
+    none is needed or none would do.
     """
 
     terms: Terms
     verdict: GuaranteeVerdict
     decided: bool
     change: Change | None
+    coarse: str | None = None
 
     @property
     def decision(self) -> Decision | None:
@@ -103,7 +106,8 @@ def capability(
     seen = {r.key for r in rows}
     not_read = {k: why for k, why in {**lacking, **unread}.items() if k not in seen}
     guarantees = tuple(_guarantee(loaded, model, terms_of(g), found) for g in loaded.system(model.system_id).guarantee)
-    return Capability(found.conditions, rows, guarantees, found.refusals, not_read, found.warnings)
+    warnings = (*found.warnings, *(g.coarse for g in guarantees if g.coarse))
+    return Capability(found.conditions, rows, guarantees, found.refusals, not_read, warnings)
 
 
 def _readings(
@@ -150,4 +154,4 @@ def _guarantee(loaded: LoadedPlant, model: SystemModel, terms: Terms, found: Eva
     if not decided and judged.decision is not None and judged.budget is not None:
         needed = judged.decision.uncertainty_needed
         change = smallest_change(judged.budget, needed, judged.decision.confidence) if needed else None
-    return GuaranteeCapability(terms, judged, decided, change)
+    return GuaranteeCapability(terms, judged, decided, change, coarse(judged))

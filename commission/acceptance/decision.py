@@ -24,9 +24,10 @@ RELATIVE_ROUNDING = 1e-9
 class Decision:
     """What was decided and by which limits; all values in the unit of the measured quantity.
 
-    `acceptance_low` and `acceptance_high` bound the values that are accepted. `capable` says whether the test is good
-    enough for the simple rule. `uncertainty_needed` is the standard uncertainty at which this very value would be
-    decided, None where it is decided already or lies on the limit. `what_would_decide` is a sentence for a person.
+    `acceptance_low` and `acceptance_high` bound the values that are accepted. `capable` says whether the test keeps
+    the largest uncertainty that was agreed, yes where none was. `uncertainty_needed` is the standard uncertainty at
+    which this very value would be decided, None where it is decided already or lies on the limit. `what_would_decide`
+    is a sentence for a person.
     """
 
     outcome: Outcome
@@ -57,7 +58,8 @@ def decide(
 
     - *simple* (JCGM 106, 8.2, the default of nearly all contracts): a value on or inside the limits conforms, whatever
       its uncertainty. The parties share the risk, which is only fair while the test is good enough for the tolerance;
-      so `largest_expanded_uncertainty` (two-sided at `confidence`) may be agreed. Where it is exceeded the test is not
+      so `largest_expanded_uncertainty` (two-sided at `confidence`) may be agreed, and without it every test counts.
+      Where it is exceeded the test is not
       capable, and a value nearer to a limit than its one-sided expanded uncertainty is *undecided*, both ways.
     - *guarded* (JCGM 106, 8.3): accepted only where the value is inside by the guard band `k u`, rejected only where it
       is outside by it, *undecided* between. `k` is the one-sided normal quantile at `confidence`, so that an accepted

@@ -16,7 +16,7 @@ from commission.manual.system_pages import conditions_words
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
-    from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, Target, TestSheet
+    from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, Target, Terms, TestSheet
 
 _SHEET_KEYS = (
     "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
@@ -209,13 +209,23 @@ def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
         facts = [
             ("Promised", f"{display.text(t.terms.value, kind)} at {at}"),
             ("Tolerance", ", ".join(shares) or "none stated"),
-            ("Decision rule", f"{t.terms.rule} acceptance"),
+            ("Decision rule", f"{t.terms.rule} acceptance{_agreed(t.terms, display)}"),
             ("Carried to the day by", t.terms.carried_by),
             ("Measured by", t.terms.route or "the best route that can be used"),
             ("Clause", t.terms.source or "not stated"),
         ]
         found.append({"label": label_of(t.key), "facts": [{"label": a, "text": b} for a, b in facts]})
     return found
+
+
+def _agreed(terms: Terms, display: Display) -> str:
+    """What the simple rule asks of the test itself: only what the contract states."""
+    if terms.rule != "simple":
+        return ""
+    if terms.largest is None:
+        return ": the measured value decides, whatever its uncertainty"
+    largest = display.text(terms.largest, Kind.RATIO, 1)
+    return f": the measured value decides, where its uncertainty (95 %) is at most {largest} of the promised value"
 
 
 def _sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: str | None) -> dict[str, Any]:

@@ -130,3 +130,20 @@ def test_a_sealed_unit_with_its_own_gauge_is_read(tmp_path: Path) -> None:
     rows = {r.key: r for r in capability(plant, fit(plant, "cold-room"), {SINK: 295.15}).readings}
     assert rows["suction_pressure"].instrument == "low gauge"
     assert "evaporating_temperature" in rows
+
+
+def test_a_coarse_test_decides_by_the_simple_rule_and_is_named(cold_room: LoadedPlant, tmp_path: Path) -> None:
+    """Where the contract agrees no largest uncertainty the page says that the test would decide, and how coarse it is;
+    where it agrees one, that it would not."""
+    text = (cold_room.folder / "plant.yaml").read_text(encoding="utf-8").replace("value: 3.3 kW", "value: 3.7 kW")
+    assert " largest_uncertainty: 5 %," in text
+    silent = write_plant(tmp_path / "silent", text.replace(" largest_uncertainty: 5 %,", ""))
+    found = capability(silent, fit(silent, "cold-room"), {SINK: 300.15})
+    row = found.guarantees[0]
+    assert row.decided
+    assert row.coarse is not None
+    assert "coarser than the tolerance" in row.coarse
+    assert row.coarse in found.warnings
+    agreed = write_plant(tmp_path / "agreed", text)
+    bound = capability(agreed, fit(agreed, "cold-room"), {SINK: 300.15}).guarantees[0]
+    assert (bound.decided, bound.coarse) == (False, None)
