@@ -94,12 +94,19 @@ def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float]) -> li
     ]
 
 
+def _readable(data: SystemData, keys: tuple[str, ...]) -> tuple[str, ...]:
+    """Those of the keys that can be read of this system: no pressures of a factory-sealed unit."""
+    from commission.acceptance.choosing import cannot_be_read
+
+    return tuple(k for k in keys if cannot_be_read(k, data.system) is None)
+
+
 def _rows(
     plant: PlantData, data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...]
 ) -> tuple[SheetRow, ...]:
     rows = []
     display = plant.display
-    for key in keys:
+    for key in _readable(data, keys):
         expected = [p.prediction.expected[key] for p in points if p.prediction and key in p.prediction.expected]
         if not expected:
             continue
@@ -140,7 +147,7 @@ def _plain_rows(data: SystemData, keys: tuple[str, ...], display: Display) -> tu
             data.system.measured_with.get(k, ""),
             (),
         )
-        for k in keys
+        for k in _readable(data, keys)
     )
 
 
@@ -167,7 +174,7 @@ def _wanted(data: SystemData) -> dict[str, float]:
     """What will be read, at its rated value in SI."""
     if data.rated is None:
         return {}
-    read = {k: data.rated.expected[k].value for k in READ if k in data.rated.expected}
+    read = {k: data.rated.expected[k].value for k in _readable(data, READ) if k in data.rated.expected}
     return {**data.rated.conditions, **read}
 
 
@@ -182,6 +189,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
     )
     context: dict[str, Any] = {
         "because": data.because,
+        "no_gauges": _readable(data, READ) != READ,
         "plant_name": plant.name,
         "system_name": data.name,
         "digest": plant.loaded.digest[:12],
