@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import datetime as dt
-import os
 import random
 import statistics
 import subprocess
@@ -29,6 +28,13 @@ columns:
   Room: {quantity: heat_source_inlet_temperature, unit: °C}
   Power: {quantity: power_input, unit: kW}
 """
+MEASURE = """\
+import os, subprocess, sys
+process = subprocess.Popen(sys.argv[1:], stdout=subprocess.DEVNULL)
+_, status, used = os.wait4(process.pid, 0)
+process.returncode = os.waitstatus_to_exitcode(status)
+print(used.ru_utime + used.ru_stime, used.ru_maxrss, process.returncode)
+"""
 READ = """\
 import sys
 from pathlib import Path
@@ -39,12 +45,15 @@ assert len(log.times) == int(sys.argv[3])
 
 
 def child(arguments: Sequence[str]) -> tuple[float, float]:
-    """CPU seconds and greatest memory (MB) of a Python process, which must succeed."""
-    process = subprocess.Popen([sys.executable, *arguments], cwd=ROOT, stdout=subprocess.DEVNULL)
-    _, status, used = os.wait4(process.pid, 0)
-    process.returncode = os.waitstatus_to_exitcode(status)
-    assert process.returncode == 0, f"python {' '.join(arguments)} left with {process.returncode}"
-    return used.ru_utime + used.ru_stime, used.ru_maxrss * TO_BYTES / MEGABYTE
+    """CPU seconds and greatest memory (MB) of a Python process, which must succeed.
+
+    It is started by a small process: the system counts the memory of whoever starts a process as its own.
+    """
+    command = [sys.executable, "-c", MEASURE, sys.executable, *arguments]
+    done = subprocess.run(command, cwd=ROOT, capture_output=True, encoding="utf-8", check=True)
+    seconds, memory, code = done.stdout.split()
+    assert code == "0", f"python {' '.join(arguments)} left with {code}: {done.stderr}"
+    return float(seconds), int(memory) * TO_BYTES / MEGABYTE
 
 
 def help_over_nothing(repetitions: int) -> Row:
