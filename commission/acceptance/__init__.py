@@ -22,6 +22,7 @@ from commission.acceptance.routes import (
 )
 from commission.acceptance.sheet import SheetError, Target, TestSheet
 from commission.acceptance.sheet_text import read_sheet
+from commission.acceptance.standstill import Standstill, standstill
 from commission.acceptance.steadiness import Steadiness, steadiness
 from commission.acceptance.tolerances import LibraryTolerance, deciding_tolerance, tolerances
 
@@ -48,6 +49,7 @@ __all__ = [
     "Refusal",
     "RouteResult",
     "SheetError",
+    "Standstill",
     "Steadiness",
     "Target",
     "Terms",
@@ -79,6 +81,7 @@ __all__ = [
     "significant",
     "smallest_change",
     "spread_of",
+    "standstill",
     "steadiness",
     "terms_of",
     "tolerances",
