@@ -34,7 +34,7 @@ class Problem:
     def __str__(self) -> str:
         head = ": ".join(p for p in (self.place, shorten(self.path)) if p)
         text = f"{head}: {self.message}" if head else self.message
-        if self.value is not None:
+        if self.value:
             text += f"\n    written: {shorten(self.value)}"
         if self.allowed is not None:
             text += f"\n    allowed: {shorten(self.allowed, 600)}"

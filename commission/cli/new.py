@@ -11,7 +11,22 @@ from commission.cli.options import say
 DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling", "space_heating", "water_heating")
 
 
-@click.command(name="new")
+class _WithHeadings(click.Command):
+    """The command whose help ends with the headings of a schedule, read only when help is asked for."""
+
+    def format_epilog(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
+        from commission.description import schedule_columns
+
+        first = ", ".join(headings[0] for headings in schedule_columns().values())
+        formatter.write_paragraph()
+        formatter.write_text(
+            "A schedule has one row of headings and one row for each system. Units stand in the cells, in brackets "
+            "behind the heading such as Ambient [°F], or in a row below the headings. Other columns are kept as "
+            f"remarks. Headings that are understood, besides other words for the same: {first}."
+        )
+
+
+@click.command(name="new", cls=_WithHeadings)
 @click.argument("folder", metavar="DIR", type=click.Path(path_type=Path))
 @click.option("--duty", type=click.Choice(DUTIES), help="What the system does.")
 @click.option(

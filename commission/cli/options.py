@@ -21,8 +21,10 @@ def say(message: str) -> None:
     click.echo(message, err=True)
 
 
-def parse_conditions(pairs: tuple[str, ...], barometric_pressure: float) -> dict[str, float]:
-    """`--at KEY=VALUE` pairs as SI values by nomenclature key.
+def parse_conditions(
+    pairs: tuple[str, ...], barometric_pressure: float, known: tuple[str, ...] = ()
+) -> dict[str, float]:
+    """`--at KEY=VALUE` pairs as SI values by nomenclature key; `known` are the conditions to name where a key is not.
 
     Raises:
         InputError: with every pair that has no `=`, an unknown or repeated key, or a value that cannot be read.
@@ -39,7 +41,9 @@ def parse_conditions(pairs: tuple[str, ...], barometric_pressure: float) -> dict
                                     "'heat_sink_inlet_temperature=31 °C'"))  # fmt: skip
         elif key not in NOMENCLATURE:
             near = nearest(key, NOMENCLATURE)
-            problems.append(Problem("there is no quantity of this name", path=place, value=key, nearest=near))
+            near = nearest(key, known) or near
+            problems.append(Problem("there is no quantity of this name", path=place, value=key,
+                                    allowed=", ".join(known) or None, nearest=near))  # fmt: skip
         elif key in conditions:
             problems.append(Problem("this condition is given twice", path=place, value=text))
         else:

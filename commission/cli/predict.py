@@ -59,7 +59,8 @@ def command(
 
         click.echo(str(freeze(loaded, system, name, ranges)))
         return
-    conditions = parse_conditions(pairs, loaded.barometric_pressure) if pairs else None
+    known_axes = _axes(loaded, system) if pairs and system is not None else ()
+    conditions = parse_conditions(pairs, loaded.barometric_pressure, known_axes) if pairs else None
     results = {name: _predict(loaded, name, conditions) for name in ([system] if system else known)}
     if as_json:
         click.echo(json.dumps({"systems": {n: _as_data(r) for n, r in results.items()}}, indent=2, ensure_ascii=False))
@@ -72,6 +73,16 @@ def command(
         title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
         blocks.append(_as_text(title, result, display, given=bool(pairs)))
     click.echo("\n\n".join(blocks))
+
+
+def _axes(loaded: LoadedPlant, system: str) -> tuple[str, ...]:
+    """The conditions that a system can be asked at; none where it cannot be calculated."""
+    from commission.prediction import fit
+
+    try:
+        return tuple(fit(loaded, system).condition_axes)
+    except NotCalculatedError:
+        return ()
 
 
 def _predict(loaded: LoadedPlant, system: str, conditions: Mapping[str, float] | None) -> Prediction | str:

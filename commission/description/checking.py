@@ -18,6 +18,7 @@ MAX_PROBLEMS = 100
 
 ModelT = TypeVar("ModelT", bound=BaseModel)
 
+_FILL_IN = "a text; or take the line out"
 _WANTED = {
     "string_type": "text is wanted here, not a list or mapping",
     "dict_type": "keys with values are wanted here",
@@ -125,6 +126,8 @@ def _problem(model_cls: type[BaseModel], error: ErrorDetails, positions: Positio
             message = _WANTED.get(kind) or shorten(error["msg"])
             if positions.text(path) == "":
                 message = f"nothing is written here; {message}"
+                if kind == "string_too_short":
+                    return positions.problem(path, "nothing is written here", allowed=_FILL_IN)
             allowed = _listed(known_keys(annotation_at(model_cls, inside))) if "keys" in message else None
             return positions.problem(path, message, allowed=allowed or None)
 

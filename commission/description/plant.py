@@ -94,6 +94,9 @@ def load_plant(folder: Path | str) -> LoadedPlant:
         DescriptionError: with all problems of the stage that failed: reading, then shape, then meaning.
     """
     folder = Path(folder)
+    if folder.is_file():
+        allowed = f"the folder that holds {PLANT_FILE}, such as {folder.parent}"
+        raise DescriptionError(Problem("this is a file; the folder of a plant is wanted", str(folder), allowed=allowed))
     if not folder.is_dir():
         raise DescriptionError(
             Problem("there is no such folder", file=str(folder), allowed=f"a folder that holds {PLANT_FILE}")

@@ -14,6 +14,7 @@ from typing import Any
 import yaml
 
 from commission.description.positions import DescriptionError, KeyPath, Mark, Position, Positions
+from commission.description.syntax import syntax_problem
 from commission.errors import Problem, shorten
 
 MAX_BYTES = 512 * 1024
@@ -112,20 +113,10 @@ def read_yaml(source: Path | str, file: str | None = None) -> ReadFile:
     try:
         builder.read(yaml.parse(text, Loader=Loader))
     except yaml.MarkedYAMLError as error:
-        raise DescriptionError(_syntax_problem(error, name)) from None
+        raise DescriptionError(syntax_problem(error, name, text, MAX_DEPTH)) from None
     except (yaml.YAMLError, RecursionError) as error:
         raise DescriptionError(Problem(f"this is not YAML: {shorten(str(error))}", name, 1, 1)) from None
     return ReadFile(builder.root, builder.positions, tuple(builder.problems), content)
-
-
-def _syntax_problem(error: yaml.MarkedYAMLError, file: str) -> Problem:
-    mark = error.problem_mark or error.context_mark
-    words = ", ".join(part for part in (error.context, error.problem) if part)
-    if "nesting" in words:
-        words = f"nested more than {MAX_DEPTH} levels deep"
-    line, column = (mark.line + 1, mark.column + 1) if mark else (1, 1)
-    hint = "check indentation, a colon followed by a space, closed brackets and quotes"
-    return Problem(f"this is not YAML: {shorten(words)}", file, line, column, allowed=hint)
 
 
 @dataclass(slots=True)

@@ -191,7 +191,8 @@ def _explain_unit(spelling: str, number: float, kind: Kind) -> tuple[str, str | 
     if hint:
         return hint, None
     if kind is Kind.PRESSURE and Kind.PRESSURE_DIFFERENCE in others:
-        return f"say gauge or absolute: {number:g} {shown} g or {number:g} {shown} a", None
+        gap = "" if spelling.casefold() == "psi" else " "
+        return f"say gauge or absolute: {number:g} {shown}{gap}g or {number:g} {shown}{gap}a", None
     if kind is Kind.TEMPERATURE_DIFFERENCE and Kind.TEMPERATURE in others:
         unit = find_unit(spelling, Kind.TEMPERATURE)
         word = "K" if unit is not None and unit.name == "°C" else "°F difference"

@@ -31,11 +31,15 @@ people:
 _WET, _HUMIDITY = "heat_source_wet_bulb", "heat_source_relative_humidity"
 
 
+_READINGS = "readings:  # compared with what is expected; the answers below tick off the checklist"
+
+
 def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel | None = None) -> str:
     """A record of this system and stage as YAML with everything left open, comments saying what belongs where.
 
     With the fitted model the conditions and readings are those that it knows, and each names the instrument of the
-    plant that reads it best; without it, those that `measured_with` names.
+    plant that reads it best, or none where the plant names no instruments at all; without it, those that
+    `measured_with` names.
 
     Raises:
         InputError: no such system or stage.
@@ -52,25 +56,29 @@ def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel
         axes = [_WET if k == _HUMIDITY else k for k in axes]
         asked[_WET] = named[_WET]
     lines += ["conditions:", *_lines([(k, asked.get(k)) for k in axes], display)]
-    lines += ["readings:", *_lines([(k, i) for k, i in asked.items() if k in READING_KEYS and k not in axes], display)]
+    readings = [(k, i) for k, i in asked.items() if k in READING_KEYS and k not in axes]
+    lines += [_READINGS if readings else "readings: {}", *_lines(readings, display)]
     lines += ["answers:" if items else "answers: {}", *_answers(items)]
     return "\n".join(lines) + "\n"
 
 
 def _asked(loaded: LoadedPlant, system: str, model: SystemModel | None) -> dict[str, str | None]:
     """Quantities in the order of the nomenclature with the instrument for each."""
-    measured_with = loaded.system(system).measured_with
+    system_read = loaded.system(system)
+    measured_with = system_read.measured_with
     if model is None:
         return {k: measured_with[k] for k in NOMENCLATURE if k in measured_with}
     from commission.acceptance.capability import NEVER_READ
-    from commission.acceptance.choosing import cannot_be_read, choose_instrument
+    from commission.acceptance.choosing import DIRECT, cannot_be_read, choose_instrument
 
     prediction = model.predict()
     values = {**prediction.conditions, **{k: e.value for k, e in prediction.expected.items() if k not in NEVER_READ}}
+    if not loaded.plant.instruments:
+        return {k: None for k in NOMENCLATURE if k in values and k in DIRECT and not cannot_be_read(k, system_read)}
     chosen = {
         k: choose_instrument(k, v, loaded.plant.instruments, measured_with, loaded.barometric_pressure)
         for k, v in values.items()
-        if cannot_be_read(k, loaded.system(system)) is None
+        if cannot_be_read(k, system_read) is None
     }
     return {k: chosen[k] for k in NOMENCLATURE if chosen.get(k) is not None}
 

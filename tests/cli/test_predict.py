@@ -127,3 +127,10 @@ def test_all_wrong_conditions_are_told_in_one_run(commission: Run, example_folde
     assert "write its unit" in done.stderr
     assert "nonsense" in done.stderr
     assert "2 problems" in done.stderr
+
+
+def test_an_unknown_condition_names_those_of_the_system(commission: Run, example_folder: Path) -> None:
+    """Who guesses the name of a condition is shown the conditions that this system has."""
+    done = commission("predict", example_folder, "--system", "cold-room", "--at", "outdoor=7 °C")
+    assert done.returncode == 2
+    assert "allowed: heat_source_inlet_temperature, heat_sink_inlet_temperature" in done.stderr

@@ -65,7 +65,7 @@ def test_a_folder_is_wanted(tmp_path: Path, name: str) -> None:
     (tmp_path / "file").write_text("x", encoding="utf-8")
     with pytest.raises(DescriptionError) as caught:
         load_plant(tmp_path / name)
-    assert "no such folder" in caught.value.problems[0].message
+    assert {"missing": "no such folder", "file": "this is a file"}[name] in caught.value.problems[0].message
 
 
 def test_a_folder_without_description(tmp_path: Path) -> None:
@@ -106,3 +106,12 @@ def test_instruments_in_si(load: Load) -> None:
     assert (
         load(lambda d: d["instruments"].update(x={"measures": "current"})).plant.instruments["x"].resolved.span is None
     )
+
+
+def test_the_file_given_for_its_folder(example_folder: Path) -> None:
+    """Who names plant.yaml instead of its folder is told which folder to name."""
+    with pytest.raises(DescriptionError) as caught:
+        load_plant(example_folder / "plant.yaml")
+    problem = caught.value.problems[0]
+    assert "this is a file" in problem.message
+    assert str(example_folder) in (problem.allowed or "")

@@ -151,3 +151,32 @@ def test_random_bytes_are_read_or_refused(tmp_path: Path) -> None:
     for _ in range(200):
         path.write_bytes(source.randbytes(source.randrange(1, 60)))
         assert all(p.file == "f.yaml" for p in problems_of(path))
+
+
+@pytest.mark.parametrize(
+    ("text", "message", "place", "allowed"),
+    [
+        ("plant:\n\tname: x\n", "a tabulator stands here", (2, 1), "spaces"),
+        ("a:\n  b: c\n\td: e\n", "a tabulator stands here", (3, 1), "spaces"),
+        ("a:\n  name: x: y\n", "a second colon", (2, 10), "in quotes"),
+        ('a: "x\nb: c\n', "quotation mark that opens here", (1, 4), "closing quotation mark"),
+        ("a: {b: c\nd: e\n", "bracket that opens in line 1", (2, 2), "} at the end"),
+        ("a: [b, c\nd: e\n", "bracket that opens in line 1", (2, 2), "] at the end"),
+        ("a:\n  b: c\n   d: e\n", "the line above has a value already", (3, 5), "spaces in front"),
+        ("a:\n  b: c\n d: e\n", "does not line up", (3, 2), "spaces in front"),
+        ("a:\n - b\n c: d\n", "does not line up", (3, 2), "spaces in front"),
+        ("a: @x\n", "cannot start with @", (1, 4), "quotes"),
+        ("a: 'x' y\n", "does not belong to the value", (1, 8), "in quotes"),
+        ("a:b\nc: d\n", "no colon with a space", (2, 2), "spaces in front"),
+        ('a: "\\d"\n', "unknown escape character", (1, 5), "quotes"),
+    ],
+)
+def test_slips_of_yaml_in_plain_words(text: str, message: str, place: tuple[int, int], allowed: str) -> None:
+    """The usual slips are named as what they are, at the place where a person mends them, with what to write."""
+    with pytest.raises(DescriptionError) as caught:
+        read_yaml(text, "f.yaml")
+    problem = caught.value.problems[-1]
+    assert problem.message.startswith("this is not YAML: ")
+    assert message in problem.message
+    assert (problem.line, problem.column) == place
+    assert allowed in (problem.allowed or "")

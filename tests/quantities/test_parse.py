@@ -99,7 +99,7 @@ def test_gauge_becomes_absolute_at_the_barometer_of_the_site() -> None:
         ("5 kw", Kind.POWER, "not a unit of power", "kW"),
         ("5 Kg", Kind.MASS, "not a unit of mass", "kg"),
         ("24 bar", Kind.PRESSURE, "say gauge or absolute: 24 bar g or 24 bar a", None),
-        ("24 psi", Kind.PRESSURE, "say gauge or absolute", None),
+        ("24 psi", Kind.PRESSURE, "say gauge or absolute: 24 psig or 24 psia", None),
         ("24 Bar g", Kind.PRESSURE, "not a unit of pressure", "bar g"),
         ("29 inHg", Kind.PRESSURE, "inHg vacuum", None),
         ("-0.5 bar a", Kind.PRESSURE, "below a perfect vacuum", None),

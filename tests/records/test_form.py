@@ -7,9 +7,9 @@ from pathlib import Path
 
 import pytest
 
-from commission.description import LoadedPlant
+from commission.description import LoadedPlant, load_plant, new_plant, read_yaml
 from commission.errors import InputError
-from commission.prediction import SystemModel
+from commission.prediction import SystemModel, fit
 from commission.quantities import NOMENCLATURE, Kind
 from commission.records import RecordError, read_record, record_form
 
@@ -66,3 +66,24 @@ def test_an_unknown_system_or_stage_names_the_nearest(loaded: LoadedPlant, syste
     with pytest.raises(InputError) as caught:
         record_form(loaded, system, stage)
     assert caught.value.problems[0].nearest in ("store", "visit")
+
+
+def test_a_plant_without_instruments_still_asks_for_readings(tmp_path: Path) -> None:
+    """Who has named no instruments yet gets every reading of one gauge, probe or meter, and none is empty YAML."""
+    folder = new_plant(tmp_path / "plant", "space_heating")[0].parent
+    loaded = load_plant(folder)
+    (system,) = loaded.plant.systems
+    text = record_form(loaded, system, "performance", fit(loaded, system))
+    assert read_yaml(text).data["readings"].keys() >= {"suction_pressure", "discharge_pressure", "power_input"}
+    assert read_yaml(record_form(loaded, system, "performance")).data["readings"] == {}
+
+
+def test_what_is_left_open_is_said_plainly(tmp_path: Path, loaded: LoadedPlant, model: SystemModel) -> None:
+    """A blank form names what is not filled in, in the words of a person and without an empty echo."""
+    path = tmp_path / "blank.yaml"
+    path.write_text(record_form(loaded, "store", "visit", model), encoding="utf-8")
+    with pytest.raises(RecordError) as caught:
+        read_record(path, loaded)
+    name = next(p for p in caught.value.problems if p.path == "people.operator.name")
+    assert name.message == "nothing is written here"
+    assert "written:" not in str(name)
