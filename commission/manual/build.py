@@ -15,6 +15,7 @@ from commission.manual.contents import write_book
 from commission.manual.frame import Frames
 from commission.manual.gather import gather
 from commission.manual.rendering import environment
+from commission.manual.single import single_files
 from commission.manual.store import FolderStore, Store
 from commission.manual.swap import MARKER, check_replaceable, fresh_folder
 from commission.manual.where import templates_folder
@@ -69,6 +70,7 @@ def build(
     data = gather(loaded, progress)
     contents = write_book(data, store, progress)
     env = environment(templates, data.display)
+    texts = contents.texts | single_files(contents.book, env, templates, data)
     frames = Frames(contents.book, data, __version__, serving)
     with fresh_folder(target) as fresh:
         from commission.manual.site import write_site
@@ -79,7 +81,7 @@ def build(
             templates=templates,
             frame=frames,
             owner=contents.owner_files,
-            texts=contents.texts,
+            texts=texts,
             site_name=data.name,
             work=fresh.parent,
             out=fresh,

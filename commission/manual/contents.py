@@ -28,6 +28,7 @@ from commission.manual.records_pages import (
     visits,
 )
 from commission.manual.saturation import saturation_page
+from commission.manual.single import KINDS, single_path
 from commission.manual.states import Standing
 from commission.manual.store import Store
 from commission.manual.upkeep_pages import CALENDAR, PAGE, next_duties, upkeep_page
@@ -90,7 +91,11 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
             book.add(page.sheet)
     book.add(plant_pages.method_page())
     book.add(plant_pages.reference_page())
-    book.add(plant_pages.carry_page())
+    singles = [(d.name, tuple((single_path(d, kind), title) for kind, title in KINDS)) for d in plant.systems]
+    for _, files in singles:
+        for path, _ in files:
+            book.add_file(path)
+    book.add(plant_pages.carry_page(singles))
     book.add(plant_pages.search_page())
     return Contents(book, (*documents, *pages, *archive.files), texts, findings, (*left_documents, *left_pages))
 

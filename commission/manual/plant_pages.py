@@ -219,9 +219,10 @@ def reference_page() -> Sheet:
     )
 
 
-def carry_page() -> Sheet:
-    """How to carry the manual, honest about tablets."""
-    return Sheet("how-to-carry-this-manual", "How to carry this manual", "reference", "carry.html")
+def carry_page(singles: list[tuple[str, tuple[tuple[str, str], ...]]]) -> Sheet:
+    """How to carry the manual, honest about tablets; `singles` are the single files of each system."""
+    context = {"singles": singles}
+    return Sheet("how-to-carry-this-manual", "How to carry this manual", "reference", "carry.html", context)
 
 
 def search_page() -> Sheet:

@@ -42,7 +42,8 @@ def _one_fit_for_each_description() -> Iterator[None]:
 def plant(tmp_path_factory: pytest.TempPathFactory, example_folder: Path) -> Path:
     """The example plant with three filed visits: a trim, an accepted test by a frozen sheet, and a later visit."""
     folder = tmp_path_factory.mktemp("plant") / "plant"
-    shutil.copytree(example_folder, folder, ignore=shutil.ignore_patterns("manual", ".manual-*", "records"))
+    left_out = shutil.ignore_patterns("manual", ".manual-*", "records", "upkeep.yaml")
+    shutil.copytree(example_folder, folder, ignore=left_out)
     file_visits(folder)
     return folder
 
@@ -60,11 +61,17 @@ def site(built: BuildResult) -> Path:
 
 
 @pytest.fixture(scope="session")
-def hostile(tmp_path_factory: pytest.TempPathFactory, example_folder: Path) -> BuildResult:
-    """The manual of a plant with hostile names, hostile pages and one system that cannot be calculated."""
+def hostile_plant(tmp_path_factory: pytest.TempPathFactory, example_folder: Path) -> Path:
+    """A small plant with hostile names, hostile pages and one system that cannot be calculated."""
     folder = tmp_path_factory.mktemp("hostile") / "plant"
     write_hostile_plant(folder, example_folder)
-    return build(folder, folder.parent / "manual")
+    return folder
+
+
+@pytest.fixture(scope="session")
+def hostile(hostile_plant: Path) -> BuildResult:
+    """Its manual."""
+    return build(hostile_plant, hostile_plant.parent / "manual")
 
 
 @cache
