@@ -181,7 +181,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     exponent = a["air_side_exponent"]
     evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a))
     condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)
-    regulator, greatest = suction_limits(facts)
+    regulator, greatest = suction_limits(facts, a)
     machine: Machine
     if facts.transcritical:
         pressure = gas_cooler_pressure(facts, a)
@@ -213,15 +213,21 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     )
 
 
-def suction_limits(facts: Facts) -> tuple[float | None, float | None]:
-    """Pressure (Pa) of a crankcase pressure regulator, and dew point (K) at which the valve's own limit closes it."""
-    regulator, valve = facts.system.controls.crankcase_pressure_regulator, None
+def suction_limits(facts: Facts, a: Mapping[str, float]) -> tuple[float | None, float | None]:
+    """Pressure (Pa) of a crankcase pressure regulator, and dew point (K) at which the valve's own limit closes it, each
+    as it may really be held."""
+    stated, valve = facts.system.controls.crankcase_pressure_regulator, None
     if facts.system.expansion is not None:
         valve = facts.system.expansion.maximum_operating_pressure
-    return (
-        facts.loaded.absolute(regulator) if regulator is not None else None,
-        facts.fluid.dew_temperature(facts.loaded.absolute(valve)) if valve is not None else None,
-    )
+    regulator = greatest = None
+    if stated is not None:
+        regulator = facts.loaded.absolute(stated)
+        departure = a["suction_limit_departure"]
+        if departure:
+            regulator = facts.fluid.dew_pressure(facts.fluid.dew_temperature(regulator) + departure)
+    if valve is not None:
+        greatest = facts.fluid.dew_temperature(facts.loaded.absolute(valve)) + a["suction_limit_departure"]
+    return regulator, greatest
 
 
 def head_pressure(facts: Facts, a: Mapping[str, float]) -> HeadPressure | None:

@@ -36,7 +36,8 @@ class Variant:
     """A machine refitted with one cause moved by one standard uncertainty.
 
     `sign` is -1 where the cause was moved down, because its range ends at its value or no machine is left above;
-    effects are given per +1.
+    effects are given per +1. A wide scatter is moved only part of the way, to stay where the machine is one, and `sign`
+    is then the whole over the part.
     """
 
     cause: str
@@ -211,7 +212,7 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
         sign = math.copysign(1.0, move(problem.facts.assumptions[key]))
         variants.append(Variant(key, table.plan(x + inverse[:, len(problem.free) + n]), sign))
     for direction in scatter_directions(inverse, matrix[: len(stated)][stated]):
-        variants.append(Variant(SCATTER, table.plan(x + max(chi, 1.0) * direction), 1.0))
+        variants.append(Variant(SCATTER, table.plan(x + direction), max(chi, 1.0)))
     done = _finish(problem, start, plan, points, values, tuple(variants), MARGIN * chi, dof, found)
     return replace(done, held=held)
 

@@ -135,6 +135,8 @@ def _start(problem: Problem, a: Mapping[str, float], rated: Rated) -> Levels:
         )
     isentropic = swept * compression.power / (power - counted) if power else 0.65
     heat = rated.source_heat + swept * compression.power / isentropic
+    if not power:  # a start only: the estimate by which the flow of the sink was sized, or the flow could not carry it
+        heat = rated.sink_heat
     return Levels(swept, isentropic, *_conductances(problem, a, rated, evaporating, condensing, heat))
 
 

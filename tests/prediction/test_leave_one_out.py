@@ -38,7 +38,7 @@ def _misses(example: LoadedPlant, system: str, monkeypatch: pytest.MonkeyPatch) 
             square = 0.0 if datum.of in TEMPERATURES else (fit.scatter * value) ** 2
             for variant in fit.variants:
                 moved = simulating.simulate(facts, fit.values, variant.plan, left, point)
-                square += (simulating.observed(moved, datum.of) - value) ** 2
+                square += (variant.sign * (simulating.observed(moved, datum.of) - value)) ** 2
             found.append((datum.of, (value - datum.value) / math.sqrt(square), value / datum.value - 1))
     return found
 
