@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
@@ -77,6 +78,7 @@ def when(record: FiledRecord) -> str:
     return f"{record.started:%Y-%m-%d %H:%M}"
 
 
+_LONGEST_HEAD = 90
 VERDICT_CLASS = {"conforming": "good", "not conforming": "danger", "undecided": "care", "none": ""}
 
 
@@ -304,6 +306,16 @@ def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[
     )  # fmt: skip
 
 
+def _head(item: OpenItem) -> str:
+    """An item in a few words: a long one by its verdict, such as `Cooling capacity: undecided`, or by its line."""
+    if len(item.what) <= _LONGEST_HEAD:
+        return item.what
+    verdict = re.split("[,;]", item.what)[0]
+    if item.raised_by == "guarantee" and len(verdict) <= _LONGEST_HEAD:
+        return verdict
+    return label_of(item.line or "as found")
+
+
 def open_lines(plant: PlantData, archive: Archive) -> tuple[OpenLine, ...]:
     """The open items for the front page: those with the nearest date first, then those without."""
     names = {d.id: d.name for d in plant.systems}
@@ -311,7 +323,7 @@ def open_lines(plant: PlantData, archive: Archive) -> tuple[OpenLine, ...]:
     return tuple(
         OpenLine(
             i.number,
-            i.what if len(i.what) <= 90 else label_of(i.line or "as found"),
+            _head(i),
             names.get(i.system, i.system),
             i.who,
             i.due.isoformat() if i.due else None,
@@ -325,11 +337,11 @@ def open_items_page(plant: PlantData, archive: Archive) -> Sheet:
     names = {d.id: d.name for d in plant.systems}
 
     def view(i: OpenItem) -> dict[str, Any]:
-        short = len(i.what) <= 90
+        head = _head(i)
         return {
             "item": i,
-            "head": i.what if short else label_of(i.line or "as found"),
-            "text": None if short else i.what,
+            "head": head,
+            "text": None if head == i.what else i.what,
             "system": names.get(i.system, i.system),
             "found": archive.pages.get(i.found_in),
             "closed": archive.pages.get(i.closed_in) if i.closed_in else None,
