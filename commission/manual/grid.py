@@ -60,14 +60,14 @@ class Grid:
 
 
 def outdoor_axis(loaded: LoadedPlant, system: System) -> tuple[str, str]:
-    """The condition that follows the weather, and its name: the side that is outdoors, else the heat sink."""
+    """The condition that follows the weather, and its name: the side that is outdoors, else the duty's outdoor side."""
     for side, medium in (("heat_sink", system.heat_sink), ("heat_source", system.heat_source)):
         space = loaded.plant.spaces.get(medium.space) if medium.space else None
         if space is not None and space.outdoors:
             return f"{side}_inlet_temperature", "Outdoor air"
-    if system.duty in ("space_heating", "water_heating"):
-        return "heat_source_inlet_temperature", NOMENCLATURE["heat_source_inlet_temperature"].label
-    return "heat_sink_inlet_temperature", NOMENCLATURE["heat_sink_inlet_temperature"].label
+    heating = system.duty in ("space_heating", "water_heating")
+    key = "heat_source_inlet_temperature" if heating else "heat_sink_inlet_temperature"
+    return key, NOMENCLATURE[key].label.removesuffix(" temperature")  # headings add that word to either name
 
 
 def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[float, ...]:

@@ -124,7 +124,8 @@ def _saturation(
     """Bubble and dew line over the pressures of the diagram, in kJ/kg and bar."""
     low = refrigerant.dew_temperature(min(s.p for s in states) / 2)
     high = refrigerant.T_high
-    temperatures = [low + (high - low) * n / 60 for n in range(61)]
+    # Steps shrink towards the top, where the lines bend.
+    temperatures = [low + (high - low) * (1 - (1 - n / 60) ** 2) for n in range(61)]
     lines: list[tuple[tuple[float, float], ...]] = []
     for side in (refrigerant.bubble, refrigerant.dew):
         points = []

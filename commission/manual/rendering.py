@@ -10,6 +10,7 @@ import jinja2
 from markupsafe import Markup
 
 from commission.manual.book import Book, Sheet
+from commission.manual.showing import sourced
 from commission.quantities import Display
 
 
@@ -26,6 +27,7 @@ def environment(templates: Path, display: Display) -> jinja2.Environment:
     harden(env)
     env.globals["display"] = display
     env.filters["by_kind"] = display.text
+    env.filters["sourced"] = sourced
     env.filters["by_key"] = lambda value, key: display.of(key, value)
     return env
 

@@ -78,6 +78,11 @@ def _safety_titles() -> Mapping[str, tuple[str, Kind]]:
     return QUANTITY_TITLES
 
 
+def sourced(source: str, sureness: str) -> str:
+    """A source and how sure it is; `common practice` is not said twice."""
+    return sureness if sureness.startswith(source) else f"{source} ({sureness})"
+
+
 def unit_of(display: Display, kind: Kind) -> str:
     """The unit as printed."""
     return pretty(display.unit_and_digits(kind)[0])

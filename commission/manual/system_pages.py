@@ -68,7 +68,7 @@ def side_name(plant: PlantData, data: SystemData, side: str) -> str:
     """A medium as people on site say it: `Cold room air`, `water`."""
     medium = getattr(data.system, side)
     if medium.medium != "air" or not medium.space:
-        return f"{medium.medium}, {side.replace('_', ' ')}"
+        return str(medium.medium)
     space = plant.loaded.plant.spaces.get(medium.space)
     return f"air of {(space.name if space else None) or medium.space}"
 
@@ -94,8 +94,12 @@ def conditions_words(
 
 def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str, float]) -> str:
     """The same in one sentence part."""
-    lines = conditions_words(plant, data, conditions)
-    return "; ".join(f"{what.partition(': ')[2] or what.lower()} {values}" for what, values in lines)
+    parts = []
+    for what, values in conditions_words(plant, data, conditions):
+        side, _, name = what.partition(": ")
+        liquid = bool(name) and not name.startswith("air of ")
+        parts.append(f"{name} of the {side.lower()} {values}" if liquid else f"{name or what.lower()} {values}")
+    return "; ".join(parts)
 
 
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:

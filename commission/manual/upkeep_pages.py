@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 from commission.manual.book import Book, Sheet, slug
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.showing import sourced
 
 if TYPE_CHECKING:
     from commission.manual.records_pages import Archive
@@ -28,12 +29,14 @@ _MONTHS = (
 class DutyView:
     """One duty as its row shows it.
 
-    `until` is the day as a date in text, None where there is none. `sources` pairs the words before a source with the
-    source and how sure it is; `record_page`, `item_page` with `item_anchor`, and `subject_page` are pages to go to.
+    `until` is the day as a date in text, None where there is none; `instead` is what stands in its place. `sources`
+    pairs the words before a source with the source and how sure it is. `record_page`, and `item_page` with
+    `item_anchor`, are places to go to.
     """
 
     anchor: str
     until: str | None
+    instead: str
     subject: str
     what: str
     interval: str
@@ -64,11 +67,6 @@ def _sentence(text: str) -> str:
     return text[:1].upper() + text[1:]
 
 
-def _source(source: str, sureness: str) -> str:
-    """A source and how sure it is; `common practice` is not said twice."""
-    return _sentence(sureness if sureness.startswith(source) else f"{source} ({sureness})")
-
-
 def anchor(duty: Duty) -> str:
     """The anchor of a duty on the page of what is due."""
     return f"due-{slug(duty.key)}"
@@ -79,9 +77,9 @@ def _view(duty: Duty, plant: PlantData, archive: Archive, items: dict[str, set[s
 
     page = next((d.page("checklist") for d in plant.systems if d.id == duty.subject and duty.of == "system"), None)
     known = duty.item is not None and duty.item in items.get(duty.subject, set())
-    sources = [("Interval", _source(duty.source, duty.sureness))]
+    sources = [("Interval", _sentence(sourced(duty.source, duty.sureness)))]
     if duty.act_source and duty.act_mark:
-        sources.append(("What to do", _source(duty.act_source, MARKS[duty.act_mark])))
+        sources.append(("What to do", _sentence(sourced(duty.act_source, MARKS[duty.act_mark]))))
     pairs = (
         ("Must read", duty.must_read), ("How", duty.how), ("If not", duty.if_not),
         ("Last done", duty.last.isoformat() if duty.last else None),
@@ -90,6 +88,7 @@ def _view(duty: Duty, plant: PlantData, archive: Archive, items: dict[str, set[s
     return DutyView(
         anchor=anchor(duty),
         until=duty.next.isoformat() if duty.next else None,
+        instead=f"done {duty.last.isoformat()}" if duty.state == "done" and duty.last else duty.state,
         subject=_sentence(duty.subject_name),
         what=duty.what,
         interval=duty.interval_text,

@@ -37,7 +37,7 @@ def draw_ph(diagram: PhDiagram) -> bytes:
         p = [s[2] for s in diagram.states]
         axes.plot([*h, h[0]], [*p, p[0]], color=FIRST, linewidth=2.4, solid_joinstyle="round")
         axes.plot(h, p, linestyle="none", marker="o", markersize=6, color=FIRST)
-        top = max(q for _, q in diagram.bubble)
+        top = max(*(q for _, q in diagram.bubble), *p)
         low, high = min(p) / 1.9, (top * 1.25 if top < 5 * max(p) else max(p) * 2.4)
         axes.set_ylim(low, high)
         _label_states(axes, diagram.states)
