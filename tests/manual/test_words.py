@@ -12,10 +12,11 @@ from commission.manual.book import Book, Sheet, slug, slugs
 from commission.manual.facts import stated_number
 from commission.manual.figures import Chart, Line, by_night, draw_chart
 from commission.manual.figures.style import FIRST, INK
+from commission.manual.page_display import PageDisplay
 from commission.manual.paper import css_string
 from commission.manual.saturation import table_temperatures
-from commission.manual.showing import band_text, grouped, show, show_input, spread_text
-from commission.manual.states import Standing, Visit, most_urgent, next_step, plural, steps
+from commission.manual.showing import band_text, grouped, show, show_input, sourced, spread_text
+from commission.manual.states import Standing, Visit, most_urgent, next_step, plural, steps, where_they_stand
 from commission.quantities import Display, Explained, Input, Kind
 
 METRIC = Display("metric", 97655.0)
@@ -204,3 +205,26 @@ def test_the_most_urgent_system_comes_first() -> None:
 def test_plural() -> None:
     """None, one and several."""
     assert [plural(n, "error") for n in (0, 1, 2)] == ["no errors", "1 error", "2 errors"]
+
+
+def test_air_flows_have_three_figures() -> None:
+    """2601 m³/h out of the calculation and 2600 as stated read the same; small flows and other kinds are untouched."""
+    page = PageDisplay("metric", 97655.0)
+    assert page.text(2601.0 / 3600.0, Kind.VOLUME_FLOW) == "2600 m³/h"
+    assert stated_number(page, 2601.0 / 3600.0, Kind.VOLUME_FLOW) == "2600 m³/h"
+    assert stated_number(page, 2615.0 / 3600.0, Kind.VOLUME_FLOW) == "2615 m³/h"
+    assert page.text(0.139 / 3600.0, Kind.VOLUME_FLOW) == METRIC.text(0.139 / 3600.0, Kind.VOLUME_FLOW)
+    assert page.text(2601.0, Kind.POWER) == METRIC.text(2601.0, Kind.POWER)
+
+
+def test_how_far_the_systems_are_counts_each_once() -> None:
+    """Accepted, waiting, nothing promised, not calculated: the numbers add up to the systems."""
+    bare = Standing(None, 0, 0, (), False, 0)
+    found = where_they_stand((_standing(PASSED), _standing(FAILED), bare, _standing(because="no rated point")))
+    assert found == "1 cannot be calculated, 1 accepted, 1 to be accepted, 1 with nothing promised"
+
+
+def test_common_practice_is_said_once() -> None:
+    """A source that its mark repeats is not written twice."""
+    assert sourced("common practice", "common practice, no source") == "common practice, no source"
+    assert sourced("EN 378-2", "from memory") == "EN 378-2 (from memory)"
