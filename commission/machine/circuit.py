@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from abc import ABC, abstractmethod
 from dataclasses import dataclass
 
 from commission.machine.compressor import Compression, Compressor
@@ -45,7 +46,7 @@ class Parts:
     gas_pressure: float = 0.0
 
 
-class Circuit:
+class Circuit(ABC):
     """Refrigerant side of one machine at one condition; keeps what it has calculated.
 
     The second unknown is the condensing temperature of a condenser, or the outlet temperature of a gas cooler.
@@ -74,13 +75,13 @@ class Circuit:
             self._low[evaporating] = (outlet, suction)
         return self._low[evaporating]
 
+    @abstractmethod
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
         """Pressure at the discharge port and state before the valve."""
-        raise NotImplementedError
 
+    @abstractmethod
     def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
         """States between compressor and valve, for tables and the diagram."""
-        raise NotImplementedError
 
     def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
         """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
