@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 import click
 
-from commission.cli.options import json_option, plant_argument
+from commission.cli.options import json_option, plant_argument, say
 from commission.errors import CommissionError
 
 if TYPE_CHECKING:
@@ -34,9 +34,12 @@ def command(plant: Path, record: Path, as_json: bool) -> None:
     if is_filed(record):
         outcome, text, data = _filed(loaded, read_filed(record))
     else:
-        from commission.cli.judgement import as_text
+        from commission.cli.judgement import as_text, not_compared
 
-        judgement = judge_record(loaded, read_record(record, loaded))
+        visit = read_record(record, loaded)
+        judgement = judge_record(loaded, visit)
+        for sentence in not_compared(visit, loaded):
+            say(f"mind: {sentence}")
         outcome, text, data = judgement.outcome, as_text(judgement, loaded), judgement.as_data()
     click.echo(json.dumps(data, indent=2, ensure_ascii=False) if as_json else text)
     if outcome == "not conforming":

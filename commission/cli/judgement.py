@@ -11,6 +11,7 @@ from commission.records import guarantee_sentence
 if TYPE_CHECKING:
     from commission.acceptance import Judgement
     from commission.description import LoadedPlant
+    from commission.records import Record
 
 
 def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
@@ -30,6 +31,19 @@ def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     lines += _listed("mind", judgement.warnings)
     lines += ["", f"verdict: {_verdict(judgement, display)}"]
     return "\n".join(lines)
+
+
+def not_compared(record: Record, loaded: LoadedPlant) -> list[str]:
+    """Sentences on values that answer checklist items but stand under no reading, so that nothing judges them."""
+    from commission.checklists import stages
+
+    quantity = {item.id: item.quantity for stage in stages(loaded, record.system) for item in stage.items}
+    written = {*record.readings, *record.conditions}
+    return [
+        f"the answer to {answer.item} is not compared; write it under readings as {quantity[answer.item]} too"
+        for answer in record.answers.values()
+        if answer.value is not None and quantity.get(answer.item) not in {None, *written}
+    ]
 
 
 def _label(key: str) -> str:

@@ -60,9 +60,12 @@ def command(
 
 
 def _file(loaded: LoadedPlant, file: Path, attach: Path | None) -> None:
-    from commission.records import file_record, read_filed
+    from commission.cli.judgement import not_compared
+    from commission.records import file_record, read_filed, read_record
 
     path = file_record(loaded, file, attach, filed_at=dt.datetime.now().astimezone())
+    for sentence in not_compared(read_record(file, loaded), loaded):
+        say(f"mind: {sentence}")
     filed = read_filed(path)
     say(filed.filed.sentence)
     for text in (*filed.filed.impossible, *filed.filed.warnings):

@@ -138,3 +138,24 @@ def test_build_prints_the_first_page_and_keeps_the_last_good_manual(commission: 
     assert broken.returncode == 2
     assert re.search(r"plant\.yaml:\d+:\d+: systems\.cold-room\.charge", broken.stderr)
     assert first.read_bytes() == before
+
+
+def test_values_that_answer_items_but_are_no_readings_are_named(commission: Run, tmp_path: Path) -> None:
+    """Who fills in only the checklist's answers is told that nothing compares them, and where they belong."""
+    assert commission("new", tmp_path / "plant", "--duty", "space_heating").returncode == 0
+    record = tmp_path / "visit.yaml"
+    visit = (
+        "system: heat-pump\nstage: performance\nmode: trim\nstarted: 2026-05-14T10:20+01:00\n"
+        "people:\n  operator: {name: A. Reader}\n"
+        "conditions:\n  heat_source_inlet_temperature: {value: 7 °C}\n"
+        "readings:\n  power_input: {value: 1.9 kW}\n"
+        "answers:\n  performance.suction-pressure: {answer: 3.6 bar g}\n  performance.power: {answer: 1.9 kW}\n"
+    )
+    record.write_text(visit, encoding="utf-8")
+    done = commission("compare", tmp_path / "plant", record)
+    assert done.returncode == 0, done.stderr
+    told = [line for line in done.stderr.splitlines() if "is not compared" in line]
+    assert told == [
+        "mind: the answer to performance.suction-pressure is not compared; "
+        "write it under readings as suction_pressure too"
+    ]
