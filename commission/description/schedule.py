@@ -33,6 +33,8 @@ _US_UNITS = re.compile(r"°?F\b|cfm|gpm|Btu|MBH|psi|\btons?\b|\bft|\blb", re.IGN
 _METRIC_UNITS = re.compile(r"°?C\b|m[3³]|\b[lL]/|\bkg|\bbar\b|Pa\b|\bm[2²]?\b")
 _ELECTRICAL = re.compile(r"([0-9]{3}) *V? *[-/,] *([13]) *(?:ph)? *[-/,] *(?:50|60) *(?:Hz)?", re.IGNORECASE)
 _SENTENCE = re.compile(r"[:;,]|\.\s|\s\S+\s|^.{21}|^(?:notes?|remarks?|legend|end)$", re.IGNORECASE)
+_TELLING = ("name", "nameplate.maker_type", "serves")
+"""Columns whose words may say what a system is for, the one that is looked at first in front."""
 _SUMS = {"total", "totals", "sum", "subtotal", "sub total", "grand total"}
 
 _OUTDOORS = {
@@ -189,8 +191,9 @@ def _duty(cells: Sequence[tuple[Column, Cell]], system: dict[str, Any], path: Ke
     duty = next((duty_named(cell.text) for column, cell in cells if column.key == "duty"), "")
     if duty:
         return duty
-    for column, cell in cells:
-        told = duty_described(cell.text) if column.key == "name" else None
+    telling = [cell for key in _TELLING for column, cell in cells if column.key == key]
+    for cell in telling:
+        told = duty_described(cell.text)
         if told:
             system["duty"] = told
             sheet.positions.marks[*path, "duty"] = Mark(cell.place, cell.place, cell.text)

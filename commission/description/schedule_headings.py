@@ -18,7 +18,15 @@ from commission.quantities.units import kinds_of
 _BRACKETS = re.compile(r"(.*?)[\[(]([^\[\]]*)[\])]\s*", re.DOTALL)
 _BULBS = re.compile(r"[\s/]*\b(?:DB|WB)\b(?:\s*/\s*WB\b)?", re.IGNORECASE)
 _TEMPERATURE = re.compile(r"\btemp(?:erature|\.)?\b", re.IGNORECASE)
-_SHORT_WORDS = {"db": "dry bulb", "wb": "wet bulb", "dry-bulb": "dry bulb", "wet-bulb": "wet bulb", "temp": ""}
+_SHORT_WORDS = {
+    "db": "dry bulb",
+    "wb": "wet bulb",
+    "dry-bulb": "dry bulb",
+    "wet-bulb": "wet bulb",
+    "temp": "",
+    "clg": "cooling",
+    "htg": "heating",
+}
 _AS_TEMPERATURE = {
     "space_evaporator": "point.room_air",
     "heat_sink.flow": "point.heat_sink_outlet_temperature",
@@ -115,7 +123,7 @@ def _meaning(heading: str, below: str = "") -> tuple[str | None, str]:
     if not unit and kinds_of(unit_as_known(last)):
         if key is None and _plain(start) in known:
             key, unit = known[_plain(start)], unit_as_known(last)
-        elif not start:
+        elif not start or (key is not None and len(last) > 1 and last.casefold() != "in"):
             unit = unit_as_known(last)
     if not unit and _plain(word) in ("mbh", "cfm", "gpm", "tons", "kw"):
         unit = unit_as_known(word.strip())

@@ -203,3 +203,26 @@ def test_files_that_are_no_schedule(tmp_path: Path) -> None:
     with pytest.raises(DescriptionError) as caught:
         from_schedule(schedule, tmp_path / "w")
     assert "workbook" in caught.value.problems[0].message
+
+
+def test_units_and_duties_elsewhere(tmp_path: Path) -> None:
+    """A unit may end a known heading, and the type or the service of a system may say its duty."""
+    text = (
+        "Unit Tag,Service,Refrigerant,EAT DB/WB (°F),OAT (°F),Total Clg MBH,Unit KW,Supply CFM\n"
+        'AHU-1,"Rooftop unit, packaged",R-454B,80/67,95,60,4.9,2000\n'
+    )
+    system = made(tmp_path, text)[0].systems["AHU-1"]
+    assert system.duty == "comfort_cooling"
+    assert system.rated_points[0].power_input == pytest.approx(4900)
+    assert system.rated_points[0].cooling_capacity == pytest.approx(60e3 * 0.29307107, abs=1)
+    assert system.rated_points[0].heat_source_wet_bulb == pytest.approx(292.5944, abs=1e-3)
+    assert system.heat_source.flow == pytest.approx(2000 * 0.3048**3 / 60)
+    (tmp_path / "more").mkdir()
+    text = (
+        "TAG,TYPE,REFRIGERANT,EWT (°F),LWT (°F),AMBIENT (°F),CAPACITY (TONS),GPM\n"
+        "C,Air-cooled chiller,R-32,54,44,95,20,48\n"
+    )
+    system = made(tmp_path / "more", text)[0].systems["C"]
+    assert system.duty == "liquid_cooling"
+    assert system.rated_points[0].heat_source_outlet_temperature == pytest.approx(279.8167, abs=1e-3)
+    assert system.heat_source.flow == pytest.approx(48 * 231 * 0.0254**3 / 60)
