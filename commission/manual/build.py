@@ -62,6 +62,25 @@ def build(
         InputError: the description cannot be read, `out` cannot be written or replaced, or (`strict`) a link is broken.
     """
     loaded = plant if isinstance(plant, LoadedPlant) else load_plant(Path(plant))
+    try:
+        return _build(loaded, out, progress, cache, strict, serving)
+    except FileNotFoundError as error:
+        gone = Path(error.filename).resolve() if error.filename else None
+        if gone is None or loaded.folder.resolve() not in gone.parents or gone.exists():
+            raise
+        message = "this file went away while the manual was being built: build again"
+        raise InputError(Problem(message, file=str(gone.relative_to(loaded.folder.resolve())))) from error
+
+
+def _build(
+    loaded: LoadedPlant,
+    out: Path | None,
+    progress: Callable[[str], None],
+    cache: Store | Path | None,
+    strict: bool,
+    serving: bool,
+) -> BuildResult:
+    """The build itself, from what was read to the swap."""
     target = Path(out) if out is not None else loaded.folder / "manual"
     check_replaceable(target, loaded.folder)
     store = FolderStore(cache) if isinstance(cache, Path) else cache

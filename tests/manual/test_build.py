@@ -125,6 +125,21 @@ class TestAFailingBuild:
             build(tiny, old)
         self._assert_untouched(old)
 
+    def test_a_file_that_goes_away_meanwhile(self, old: Path, tiny: Path) -> None:
+        """Somebody moves a document while the manual is built: it is named, not taken for a fault of the program."""
+        documents = tiny / "documents"
+        documents.mkdir()
+        (documents / "drawing.txt").write_text("a drawing")
+
+        def move(text: str) -> None:
+            if text.startswith("page 1 of "):
+                (documents / "drawing.txt").unlink()
+
+        with pytest.raises(InputError) as caught:
+            build(tiny, old, progress=move)
+        assert caught.value.problems[0].file == "documents/drawing.txt"
+        self._assert_untouched(old)
+
     def test_strict_and_a_link_that_leads_nowhere(self, old: Path, tiny: Path) -> None:
         """With strict, a broken link of an owner's page stops the build and is named."""
         copy = copy_plant(tiny, old.parent / "plant")
