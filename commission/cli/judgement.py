@@ -16,7 +16,9 @@ if TYPE_CHECKING:
 
 def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     """The judgement for a terminal. Uncertainties are expanded, 95 %."""
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    from commission.manual.page_display import PageDisplay
+
+    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     name = loaded.system(judgement.system).name or judgement.system
     lines = [f"{name} ({judgement.system}), {judgement.mode}"]
     for key, measured in judgement.conditions.items():

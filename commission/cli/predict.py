@@ -65,9 +65,9 @@ def command(
     if as_json:
         click.echo(json.dumps({"systems": {n: _as_data(r) for n, r in results.items()}}, indent=2, ensure_ascii=False))
         return
-    from commission.quantities import Display
+    from commission.manual.page_display import PageDisplay
 
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     blocks = []
     for name, result in results.items():
         title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
