@@ -37,13 +37,15 @@ class _WithHeadings(click.Command):
 )
 def command(folder: Path, duty: str | None, schedule: Path | None) -> None:
     """Write a first description into DIR, commented, valid as written, never overwriting a file."""
+    from commission.description import from_schedule, new_plant
     from commission.errors import InputError, Problem
 
-    if (duty is None) == (schedule is None):
+    if duty is not None and schedule is None:
+        written = new_plant(folder, duty)
+    elif schedule is not None and duty is None:
+        written = from_schedule(schedule, folder)
+    else:
         raise InputError(Problem("say either --duty or --from-schedule", allowed=f"--duty one of {', '.join(DUTIES)}"))
-    from commission.description import from_schedule, new_plant
-
-    written = new_plant(folder, duty) if duty else from_schedule(schedule, folder)  # type: ignore[arg-type]
     for path in written:
         click.echo(str(path))
     say(f"next: commission review {folder}, then commission build {folder}")

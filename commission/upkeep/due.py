@@ -274,10 +274,10 @@ def _calibration(key: str, tool: Instrument, entry: DutyEntry, origin: str) -> D
     every = entry.every
     assert isinstance(every, Interval)
     day, source, mark = tool.calibrated_until, "calibration certificate", "stated"
-    counted = "calibrated_until of the description"
+    counted = "the last day of its calibration, as described"
     if day is None and tool.calibrated_on is not None:
         day, source, mark = _later(every, tool.calibrated_on), entry.source, entry.mark
-        counted = f"calibrated on {tool.calibrated_on}; the description states no calibrated_until"
+        counted = f"calibrated on {tool.calibrated_on}; the description does not say until when"
     elif day is None:
         source, mark = entry.source, entry.mark
         counted = "no calibration is described: due before the next test, which is void without it"
