@@ -17,6 +17,7 @@ from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
 from commission.manual.proof_pages import before_the_visit, test_sheets
 from commission.manual.records_pages import (
+    ITEMS,
     Archive,
     certificates,
     open_items_page,
@@ -51,6 +52,7 @@ class Contents:
 
 def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], None]) -> Contents:
     """All pages of the manual, with links that are checked when they are rendered."""
+    from commission.records import items_csv
     from commission.review import review
     from commission.upkeep import calendar, due
 
@@ -73,7 +75,9 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     progress("counting what is due")
     duties = due(plant.loaded)
     texts[CALENDAR] = calendar(plant.loaded)
-    book.add_file(CALENDAR)
+    texts[ITEMS] = items_csv(archive.items).encode()
+    for path in (CALENDAR, ITEMS):
+        book.add_file(path)
     coming = {d.id: found[0] for d in plant.systems if (found := next_duties(d, duties, 1))}
     book.add(plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts, coming))
     book.add(safety_pages.emergency_page(plant))

@@ -21,6 +21,10 @@ if TYPE_CHECKING:
     from commission.records.filed import FrozenDeviation, FrozenGuarantee, FrozenReading
 
 
+ITEMS = "open-items.csv"
+"""All open items as a table for a spreadsheet, at the top of the site."""
+
+
 @dataclass(frozen=True, slots=True)
 class Archive:
     """The filed records of a plant with the page of each; `corrected` maps a record to the one that took its place."""
@@ -350,4 +354,5 @@ def open_items_page(plant: PlantData, archive: Archive) -> Sheet:
 
     waiting = [view(i) for i in archive.items if i.state == "open"]
     done = [view(i) for i in archive.items if i.state == "closed"]
-    return Sheet("open-items", "Open items", "plant", "open_items.html", {"open": waiting, "closed": done})
+    context = {"open": waiting, "closed": done, "table": ITEMS}
+    return Sheet("open-items", "Open items", "plant", "open_items.html", context)

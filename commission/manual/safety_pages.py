@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.showing import How, Row, show, show_how, unit_of
+from commission.manual.showing import VACUUM, How, Row, show, show_how, unit_of
 from commission.quantities import Display, Kind, pretty
 
 if TYPE_CHECKING:
@@ -80,7 +80,7 @@ def figure_row(figure: Figure, data: SystemData, display: Display) -> Row:
     how = replace(how, source=figure.source, mark=figure.sureness)
     unit = unit_of(display, figure.kind)
     value = display.number(figure.value, figure.kind)
-    if figure.kind is Kind.PRESSURE and figure.value < 5000.0:
+    if figure.kind is Kind.PRESSURE and figure.value < VACUUM:
         value, unit = f"{figure.value:.0f}", "Pa absolute"
     elif figure.key == "leak_check_months":
         value, unit = f"{figure.value:.0f}", "months"

@@ -118,12 +118,26 @@ def size_text(display: Display, kind: Kind, value: float) -> str:
     return f"{display.spread(value, kind, digits)} {display.spread_unit(kind)}".strip()
 
 
+VACUUM = 5000.0
+"""Pa absolute below which a pressure is a vacuum: nobody reads it on a gauge."""
+_CUBIC_METRE = 1.0  # from here on a volume is that of a room, not of a vessel
+
+
+def _input_text(item: Input, display: Display) -> str:
+    """An input as its reader would say it: a vacuum absolute, a room in cubic metres."""
+    if item.kind is Kind.PRESSURE and item.value < VACUUM:
+        return f"{item.value:.0f} Pa absolute"
+    if item.kind is Kind.VOLUME and item.value >= _CUBIC_METRE and display.system == "metric":
+        return f"{item.value:.1f} m³"
+    return display.text(item.value, item.kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None)
+
+
 def show_input(item: Input, display: Display) -> ShownInput:
     """One input with its unit and origin."""
     match = _ASSUMPTION.match(item.origin)
     return ShownInput(
         name=label_of(item.name),
-        value=display.text(item.value, item.kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None),
+        value=_input_text(item, display),
         origin=item.origin,
         assumption=match.group(1) if match else None,
     )

@@ -34,6 +34,8 @@ TAGS = (
     "heavy",
     "light",
     "walk_in",
+    "indoors",
+    "outdoors_only",
 )
 WORDS = (
     "system",
@@ -99,7 +101,7 @@ def emergency_card(loaded: LoadedPlant, system_id: str, substance: Substance, di
     card, replaced = (_read(own), True) if own.is_file() else (_shipped(), False)
     system = loaded.system(system_id)
     hazard = hazards(substance)
-    tags = _card_tags(system, hazard)
+    tags = _card_tags(loaded, system, hazard)
     words = _words(loaded, system_id, substance, hazard, display)
     sections = []
     for section in card.sections:
@@ -185,14 +187,21 @@ def _fill(text: str, words: Mapping[str, str]) -> str:
     return "".join(parts).strip()
 
 
-def _card_tags(system: System, hazard: Hazards) -> set[str]:
+def _card_tags(loaded: LoadedPlant, system: System, hazard: Hazards) -> set[str]:
     tags = set(hazard.tags)
     for word in ("flammable", "toxic", "carbon_dioxide"):
         if word not in tags:
             tags.add(f"not_{word}")
     if system.duty == "cold_storage":
         tags.add("walk_in")
+    tags.add("outdoors_only" if _all_outdoors(loaded, system) else "indoors")
     return tags
+
+
+def _all_outdoors(loaded: LoadedPlant, system: System) -> bool:
+    """Whether every place that the refrigerant can reach is known to be outdoors."""
+    spaces = [loaded.plant.spaces.get(key) for key in reachable_spaces(system)]
+    return bool(spaces) and all(space is not None and space.outdoors for space in spaces)
 
 
 def _words(

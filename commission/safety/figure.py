@@ -144,6 +144,7 @@ class Collector:
         return Figures(MappingProxyType(dict(self.found)), MappingProxyType(dict(self.missing)))
 
 
-def fact_input(rule: Fact) -> Input:
-    """A figure of a document as an input."""
-    return Input(rule.says, rule.value, rule.kind, f"{rule.source} ({MARKS[rule.mark]})")
+def fact_input(rule: Fact, barometric_pressure: float | None = None) -> Input:
+    """A figure of a document as an input; a gauge pressure needs the barometric pressure (Pa) of the site."""
+    value = rule.value if barometric_pressure is None else rule.gauge_at(barometric_pressure)
+    return Input(rule.says, value, rule.kind, f"{rule.source} ({MARKS[rule.mark]})")

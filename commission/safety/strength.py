@@ -31,7 +31,7 @@ def pressure_test_figures(loaded: LoadedPlant, system_id: str, out: Collector) -
         "pre_test_pressure",
         fact("pre_test_pressure").gauge_at(loaded.barometric_pressure),
         "safety_rule_figure",
-        (fact_input(fact("pre_test_pressure")),),
+        (fact_input(fact("pre_test_pressure"), loaded.barometric_pressure),),
         fact("pre_test_pressure"),
     )
     for hold in ("strength_test_hold", "tightness_test_hold"):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from pathlib import Path
 
 import pytest
 
@@ -228,3 +229,21 @@ def test_common_practice_is_said_once() -> None:
     """A source that its mark repeats is not written twice."""
     assert sourced("common practice", "common practice, no source") == "common practice, no source"
     assert sourced("EN 378-2", "from memory") == "EN 378-2 (from memory)"
+
+
+def test_inputs_are_said_as_their_reader_says_them() -> None:
+    """A vacuum stands in pascal absolute, a room in cubic metres, a vessel in litres."""
+    display = Display("metric", 97600.0)
+    assert show_input(Input("limit", 270.0, Kind.PRESSURE, "rule"), display).value == "270 Pa absolute"
+    assert show_input(Input("test", 1.5e5 + 97600.0, Kind.PRESSURE, "rule"), display).value == "1.50 bar g"
+    assert show_input(Input("room volume", 67.2, Kind.VOLUME, "area times height"), display).value == "67.2 m³"
+    assert show_input(Input("receiver", 0.0016, Kind.VOLUME, "plant.yaml"), display).value == "1.6 L"
+
+
+def test_open_items_are_a_table_too(site: Path) -> None:
+    """The page of open items links to them as comma-separated values with one row each and a head."""
+    page = (site / "open-items.html").read_text(encoding="utf-8")
+    assert 'href="open-items.csv"' in page
+    rows = (site / "open-items.csv").read_text(encoding="utf-8").splitlines()
+    assert rows[0].startswith("number,")
+    assert len(rows) > 1

@@ -64,6 +64,16 @@ def test_a_blends_warming_potential_is_that_of_its_components() -> None:
         assert entry.gwp["eu573"].number == pytest.approx(weighted, abs=0.6)
 
 
+@pytest.mark.parametrize(
+    ("name", "ar4", "ar5", "ar6"),
+    [("R-134a", 1430, 1300, 1530), ("R-32", 675, 677, 771), ("R-22", 1810, 1760, 1960), ("R-23", 14800, 12400, 14600)],
+)
+def test_warming_potentials_of_the_ipcc_reports(name: str, ar4: int, ar5: int, ar6: int) -> None:
+    """IPCC AR4 table 2.14, AR5 table 8.A.1 (no carbon feedback), AR6 table 7.SM.7; 100 years; from memory."""
+    gwp = register()[name].gwp
+    assert [gwp[k].number for k in ("ar4", "ar5", "ar6")] == [ar4, ar5, ar6]
+
+
 def test_figures_published_in_a_legal_text() -> None:
     """Spain, RSIF IF-02 and IF-04: practical limits of R-410A 0.44, R-290 0.008; LFL of R-717 0.116, R-32 0.307
     kg/m3."""

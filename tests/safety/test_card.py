@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from pathlib import Path
 
 import pytest
 
-from commission.description import LoadedPlant
+from commission.description import LoadedPlant, load_plant
 from commission.errors import InputError
 from commission.properties import refrigerant
 from commission.quantities import Display
@@ -34,6 +35,23 @@ def test_propane_card_warns_of_sparks(plant: Plants) -> None:
     assert "cold room" in found
     assert "112" in found
     assert "Ammonia" not in found
+
+
+def test_a_unit_outdoors_keeps_the_gas_out_of_the_buildings(example_folder: Path) -> None:
+    """Outdoors doors and windows beside the leak are shut, in a room they are opened from outside (common practice)."""
+    loaded = load_plant(example_folder)
+    display = Display("metric", loaded.barometric_pressure)
+
+    def words(system: str) -> str:
+        return text(
+            emergency_card(loaded, system, substance_of(refrigerant(loaded.system(system).refrigerant)), display)
+        )
+
+    assert "shut the doors, windows and air intakes" in words("floor-heating")
+    assert "Open doors and windows" not in words("floor-heating")
+    assert "Open doors and windows from outside" in words("cold-room")
+    assert "shut the doors" not in words("cold-room")
+    assert "01632 960147" in words("cold-room")
 
 
 def test_ammonia_card_carries_the_levels_of_people(plant: Plants) -> None:

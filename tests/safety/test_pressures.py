@@ -168,3 +168,12 @@ def test_evacuation_follows_refrigerant_and_charge(plant: Plants) -> None:
     assert ammonia.found["evacuation_hold"].value == 21600.0
     assert ammonia.found["evacuation_limit"].value == 675.0
     assert "rise_test_limit" in ammonia.not_calculated
+
+
+def test_a_gauge_figure_is_shown_at_the_air_pressure_of_the_site(plant: Plants) -> None:
+    """The pre-test pressure of RSIF IF-09 1.3.1 is 1.5 bar g at any altitude, in the figure and in its input alike."""
+    loaded = plant()
+    found = safety_figures(loaded, "one").found["pre_test_pressure"]
+    (given,) = found.explained.inputs
+    assert found.value - loaded.barometric_pressure == pytest.approx(1.5e5)
+    assert given.value == found.value
