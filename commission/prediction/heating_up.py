@@ -14,6 +14,7 @@ from dataclasses import dataclass
 
 from commission.description.model import Store
 from commission.errors import NotCalculatedError
+from commission.prediction.expected import in_celsius
 from commission.prediction.model import Prediction, SystemModel
 from commission.properties import liquid
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
@@ -223,7 +224,7 @@ def _element(model: SystemModel, steps: Sequence[_Step]) -> tuple[float, float, 
             raise NotCalculatedError("the outdoor temperature that locks the element out is no condition here")
         if outdoors >= min(limits):
             raise NotCalculatedError(
-                f"the element does not start at {_celsius(outdoors)} outdoors, only below {_celsius(min(limits))}"
+                f"the element does not start at {in_celsius(outdoors)} outdoors, only below {in_celsius(min(limits))}"
             )
     return back_up.power, ABOVE[back_up.where], back_up.delay or 0.0, back_up.mode == "replaces"
 
@@ -272,8 +273,3 @@ def _inputs(
         mean = sum(s.loss * s.heat for s in steps) / heat
         found.append(Input("mean heat loss of store and loop", mean, Kind.POWER, "calculated"))
     return tuple(found)
-
-
-def _celsius(temperature: float) -> str:
-    """A temperature in words for a reason, with a true minus sign."""
-    return f"{temperature - 273.15:.1f} °C".replace("-", "−")
