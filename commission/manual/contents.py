@@ -74,7 +74,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     counts = {s: sum(f.severity == s for f in findings) for s in ("error", "warning", "note")}
     progress("counting what is due")
     duties = due(plant.loaded)
-    texts[CALENDAR] = calendar(plant.loaded)
+    texts[CALENDAR] = calendar(plant.loaded, duties)
     texts[ITEMS] = items_csv(archive.items).encode()
     for path in (CALENDAR, ITEMS):
         book.add_file(path)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import hashlib
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from typing import TYPE_CHECKING
 
 from commission.records import FiledRecord, history
@@ -21,12 +21,13 @@ NOTHING_KNOWN = dt.datetime(1970, 1, 1, tzinfo=dt.UTC)
 """DTSTAMP is wanted by RFC 5545 3.8.7.2; where nothing is filed or dated, no later moment can be named."""
 
 
-def calendar(loaded: LoadedPlant) -> bytes:
+def calendar(loaded: LoadedPlant, duties: Sequence[Duty] | None = None) -> bytes:
     """One all-day event for each duty that has a day, as UTF-8 with the line ends of RFC 5545 3.1.
 
     UIDs follow plant, subject and duty, so that a calendar read in again moves its events instead of doubling them;
     DTSTAMP is the moment of the last filed record (else the last day the description names), SEQUENCE the number of
     filed records. Only the next day is written, no repetition: the one after counts from the day it is done.
+    `duties` are those of `due`, where the caller has them already.
 
     Raises:
         UpkeepError, ChecklistError: as `due`.
@@ -36,7 +37,7 @@ def calendar(loaded: LoadedPlant) -> bytes:
     site = loaded.plant.plant.name
     records = history(loaded)
     stamp = _stamp(loaded, records)
-    duties = due(loaded)
+    duties = due(loaded) if duties is None else duties
     book = Calendar()
     book.add("prodid", PRODUCT)
     book.add("version", "2.0")
