@@ -19,11 +19,9 @@ from commission.manual.proof_pages import before_the_visit, test_sheets
 from commission.manual.records_pages import (
     ITEMS,
     Archive,
-    certificates,
     open_items_page,
     open_lines,
     read_archive,
-    record_page,
     records_page,
     series_of,
     visits,
@@ -33,6 +31,7 @@ from commission.manual.single import KINDS, single_path
 from commission.manual.states import Standing
 from commission.manual.store import Store
 from commission.manual.upkeep_pages import CALENDAR, PAGE, next_duties, upkeep_page
+from commission.manual.visit_pages import certificates, record_page
 
 if TYPE_CHECKING:
     from commission.review import Finding

@@ -1,4 +1,4 @@
-"""Records as they were filed: one page for each visit, the list of a system, open items, and the certificate."""
+"""Records as they were filed: which there are, the list of a system with what has moved, and the open items."""
 
 from __future__ import annotations
 
@@ -9,16 +9,14 @@ from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.page_display import PageDisplay
 from commission.manual.plant_pages import OpenLine
 from commission.manual.plots import Figure
-from commission.manual.showing import label_of, unit_of
+from commission.manual.showing import label_of
 from commission.manual.states import Visit
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
     from commission.records import FiledRecord, OpenItem, RecordsFolder, Series
-    from commission.records.filed import FrozenDeviation, FrozenGuarantee, FrozenReading
 
 
 ITEMS = "open-items.csv"
@@ -153,161 +151,14 @@ def _history(display: Display, found: tuple[Series, ...]) -> dict[str, Any] | No
     return {"heads": [moment.date().isoformat() for moment, _ in visits_at], "rows": rows}
 
 
-def _signed(display: Display, kind: Kind, value: float) -> str:
+def signed(display: Display, kind: Kind, value: float) -> str:
     text = display.spread(value, kind)
     return text if text.startswith("−") or float(text) == 0 else f"+{text}"
 
 
 def _plus_minus(display: Display, key: str, deviation: float, expanded: float) -> str:
     kind = NOMENCLATURE[key].kind
-    return f"{_signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
-
-
-def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
-    """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it."""
-    number = any(c.isdigit() for c in r.written[:2])
-    return {
-        "label": label_of(key),
-        "written": r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}",
-        "where": r.where or "",
-        "instrument": r.instrument or "not stated",
-    }
-
-
-def _deviation(display: Display, key: str, d: FrozenDeviation, written: str) -> dict[str, Any]:
-    kind = NOMENCLATURE[key].kind
-    return {
-        "label": label_of(key),
-        "unit": unit_of(display, kind),
-        "read": display.number(d.reading, kind),
-        "written": written,
-        "expected": display.number(d.expected, kind),
-        "deviation": _signed(display, kind, d.deviation),
-        "expanded": display.spread(d.expanded, kind),
-        "spread_unit": display.spread_unit(kind),
-        "significant": d.significant,
-    }
-
-
-def _limits(display: Display, kind: Kind, low: float | None, high: float | None) -> str:
-    parts = [f"at least {display.text(low, kind)}"] if low is not None else []
-    parts += [f"at most {display.text(high, kind)}"] if high is not None else []
-    return " and ".join(parts)
-
-
-def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
-    kind = NOMENCLATURE[g.quantity].kind
-    shares = [
-        f"{display.text(v, Kind.RATIO, 1)} {word}"
-        for v, word in ((g.below, "below"), (g.above, "above"))
-        if v is not None
-    ]
-    at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in g.at.items())
-    pairs = [
-        ("Promised", f"{display.text(g.guaranteed, kind)} at {at}" if at else display.text(g.guaranteed, kind)),
-        ("Tolerance", ", ".join(shares) or "none stated"),
-        ("Carried to the day by", g.carried_by),
-        ("Promised for the condition of the day", display.text(g.carried, kind) if g.carried is not None else ""),
-        ("Limit on the day", _limits(display, kind, g.limit_low, g.limit_high)),
-        ("Measured", display.text(g.measured, kind) if g.measured is not None else ""),
-        ("Measured by", g.route or ""),
-        ("Expanded uncertainty (95 %)", f"{display.spread(g.expanded, kind)} {display.spread_unit(kind)}"
-         if g.expanded is not None else ""),
-        ("Decision rule", f"{g.rule} acceptance"),
-        ("Accepted where", _limits(display, kind, g.acceptance_low, g.acceptance_high)),
-        ("Probability of conformity", display.text(g.probability, Kind.RATIO, 1) if g.probability is not None else ""),
-        ("Target frozen before the test", "yes" if g.frozen_before else "no"),
-        ("Clause", g.source or ""),
-        ("No verdict because", g.withheld or ""),
-        ("What would decide", g.what_would_decide or ""),
-    ]  # fmt: skip
-    return {
-        "label": label_of(g.quantity),
-        "outcome": g.outcome,
-        "look": VERDICT_CLASS[g.outcome],
-        "facts": [{"label": a, "text": t} for a, t in pairs if t],
-    }
-
-
-def _shared(plant: PlantData, record: FiledRecord, archive: Archive) -> dict[str, Any]:
-    """What record page and certificate share."""
-    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
-    filed, file = record.filed, record.file
-    return {
-        "record": record,
-        "when": when(record),
-        "name": title_of(record),
-        "look": VERDICT_CLASS[record.verdict],
-        "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [_reading(display, k, r) for k, r in filed.conditions.items()],
-        "air": f"{filed.barometric_pressure / 100:.0f} hPa"
-        + ("" if filed.barometer_measured else ", not measured: from the altitude"),
-        "guarantees": [_guarantee(display, g) for g in filed.guarantees],
-        "instruments": [(name, list(words.items())) for name, words in filed.instruments.items()],
-        "attachments": [
-            (
-                a.file,
-                f"records/{a.path}" if any(f.site_path == f"records/{a.path}" for f in archive.files) else None,
-                a.sha256,
-            )
-            for a in filed.attachments
-        ],
-        "items": [i for i in archive.items if i.found_in == record.id],
-    }
-
-
-def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
-    """One visit as it was filed."""
-    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
-    filed = record.filed
-    written = {k: r.written for k, r in filed.readings.items()}
-    judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
-    alone = [_reading(display, k, r) for k, r in filed.readings.items() if k not in filed.deviations]
-    corrected = archive.corrected.get(record.id)
-    context = {
-        **_shared(plant, record, archive),
-        "deviations": judged,
-        "alone": alone,
-        "not_judged": [(label_of(k), why) for k, why in filed.not_judged.items()],
-        "routes": [
-            (r.route, label_of(r.quantity), None if r.value is None else display.of(r.quantity, r.value), r.refused)
-            for r in filed.routes
-        ],
-        "corrected_page": archive.pages.get(corrected) if corrected else None,
-        "corrects_page": archive.pages.get(record.file.corrects) if record.file.corrects else None,
-        "certificate": certificate_id(record, archive) if _accepted(record, archive) else None,
-        "records_page": data.page("records"),
-    }
-    title = f"{title_of(record)}, {record.started.date().isoformat()}"
-    return Sheet(archive.pages[record.id], title, data.group, "record.html", context, data.kicker, listed=False)
-
-
-def _accepted(record: FiledRecord, archive: Archive) -> bool:
-    return record.file.mode == "test" and record.verdict == "conforming" and record.id not in archive.corrected
-
-
-def certificate_id(record: FiledRecord, archive: Archive) -> str:
-    """The page of the certificate."""
-    return f"{archive.pages[record.id]}-certificate"
-
-
-def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[Sheet, ...]:
-    """A certificate for each accepted test, printed from what was frozen when it was filed."""
-    return tuple(
-        Sheet(
-            certificate_id(r, archive),
-            "Certificate of acceptance",
-            data.group,
-            "certificate.html",
-            {**_shared(plant, r, archive), "plant_name": plant.name, "system_name": data.name,
-             "address": plant.loaded.plant.plant.address, "record_page": archive.pages[r.id]},
-            kicker=data.kicker,
-            short=f"Certificate {r.started.date().isoformat()}",
-            paper=True,
-        )
-        for r in archive.of(data.id)
-        if _accepted(r, archive)
-    )  # fmt: skip
+    return f"{signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
 
 
 def _head(item: OpenItem) -> str:

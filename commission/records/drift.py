@@ -22,7 +22,8 @@ class Drift:
     """One quantity that has moved. Values in its SI unit; `expanded` is the 95 % uncertainty of `change`.
 
     `repeated`: the visit before showed a significant change in the same direction too. `per_year` is the change over
-    the time between, for orientation: two visits do not make a rate.
+    the time between, for orientation: two visits do not make a rate. `moved` and `since` (which
+    baseline) are words for a person.
     """
 
     system: str
@@ -34,7 +35,13 @@ class Drift:
     expanded: float
     days: int
     repeated: bool
-    sentence: str
+    moved: str
+    since: str
+
+    @property
+    def sentence(self) -> str:
+        """What has moved, by how much and since when, for a person."""
+        return f"{self.moved} against what is expected, since {self.since}"
 
     @property
     def per_year(self) -> float | None:
@@ -142,13 +149,11 @@ def _drift(one: Series, point: Point, repeated: bool, display: Display) -> Drift
     spread = f"{display.spread(point.change_expanded, quantity.kind)} {display.spread_unit(quantity.kind)}".strip()
     way = "risen" if point.change > 0 else "fallen"
     again = ", as the visit before showed already" if repeated else ""
-    sentence = (
-        f"{quantity.label} has {way} by {size} ± {spread} against what is expected, since the {one.baseline_is} "
-        f"({one.baseline}){again}"
-    )
+    moved = f"{quantity.label} has {way} by {size} ± {spread}{again}"
+    since = f"the {one.baseline_is} on {base.started.date().isoformat()}"
     return Drift(
         one.system, one.quantity, one.unit, one.baseline, point.record, point.change, point.change_expanded,
-        days, repeated, sentence,
+        days, repeated, moved, since,
     )  # fmt: skip
 
 

@@ -155,11 +155,19 @@ class FiledItem(Part):
 
     number: int = Field(ge=1)
     what: str
-    raised_by: Literal["hand", "guarantee", "answer"]
+    raised_by: Literal["hand", "reservation", "guarantee", "answer"]
     line: str | None = Field(None)
     who: str | None = Field(None)
     due: Date | None = Field(None)
     retest: str | None = Field(None)
+
+
+class StandingReservation(Part):
+    """A reservation under which the system stood accepted after this visit, raised in it or in an earlier one."""
+
+    number: int = Field(ge=1, description="its number among the open items")
+    what: str
+    found_in: str = Field(description="record that raised it")
 
 
 class FiledFile(Part):
@@ -206,6 +214,7 @@ class FiledBlock(Part):
     instruments: dict[str, dict[str, str]] = Field(default_factory=dict, description="as described on that day")
     assumptions: dict[str, Si] = Field(default_factory=dict, description="values in use, SI")
     open_items: tuple[FiledItem, ...] = Field(())
+    standing: tuple[StandingReservation, ...] = Field((), description="reservations not closed by then")
     attachments: tuple[FiledFile, ...] = Field(())
     digests: Digests
     tool: dict[str, str] = Field(description="versions of the package and of the property library")

@@ -90,6 +90,7 @@ def file_record(
             "filed_at": filed_at,
             **frozen,
             "open_items": items,
+            "standing": _standing(folder, record, identity, items),
             "attachments": files,
             "digests": {"handed_in": record.digest, "description": loaded.digest},
             "tool": versions(),
@@ -244,7 +245,11 @@ def _numbered(folder: Path, record: Record, raised: Sequence[Mapping[str, Any]])
         RecordError: an update names an item that does not exist, or one that is closed.
     """
     _check_updates(folder, record)
-    by_hand = [{**item.model_dump(), "raised_by": "hand"} for item in record.file.open_items]
+    by_hand = [
+        {**item.model_dump(), "raised_by": by}
+        for by, written in (("hand", record.file.open_items), ("reservation", record.file.reservations))
+        for item in written
+    ]
     lines = {item["line"] for item in by_hand if item["line"]}
     items = [*by_hand, *(dict(item) for item in raised if item["line"] not in lines)]
     before: dict[str, int] = {}
@@ -253,6 +258,25 @@ def _numbered(folder: Path, record: Record, raised: Sequence[Mapping[str, Any]])
         before = {i.line or i.what: i.number for i in corrected.filed.open_items}
     following = _next_numbers(folder)
     return [{"number": before.get(i["line"] or i["what"]) or next(following), **i} for i in items]
+
+
+def _standing(folder: Path, record: Record, identity: str, raised: Sequence[Mapping[str, Any]]) -> list[dict[str, Any]]:
+    """The reservations under which the system stands after this visit: those of before that nobody closed, and its own.
+
+    They are frozen with the record, so that its certificate does not lose them when the next one is issued.
+    """
+    closed = {update.item for update in record.file.item_updates if update.closed}
+    before = [r for r in read_folder(folder).records if r.system == record.system and r.started <= record.started]
+    found = {
+        item.number: {"number": item.number, "what": item.what, "found_in": item.found_in}
+        for item in items_of(before)
+        if item.raised_by == "reservation" and item.state == "open" and item.number not in closed
+    }
+    for item in raised:
+        if item["raised_by"] == "reservation":
+            number = int(item["number"])
+            found.setdefault(number, {"number": number, "what": item["what"], "found_in": identity})
+    return [found[number] for number in sorted(found)]
 
 
 def _next_numbers(folder: Path) -> Iterator[int]:

@@ -29,7 +29,7 @@ class OpenItem:
     number: int
     system: str
     what: str
-    raised_by: Literal["hand", "guarantee", "answer"]
+    raised_by: Literal["hand", "reservation", "guarantee", "answer"]
     found_in: str
     found_on: dt.date
     line: str | None = None

@@ -42,6 +42,11 @@ def _answer_alone(value: Any) -> Any:
     return {"answer": value} if isinstance(value, str) else value
 
 
+def _what_alone(value: Any) -> Any:
+    """A reservation as one text is short for `{what: text}`."""
+    return {"what": value} if isinstance(value, str) else value
+
+
 class Visitor(Part):
     """Somebody who took part in the visit, under the role they had."""
 
@@ -122,5 +127,7 @@ class RecordFile(Part):
     attachments: tuple[str, ...] = Field((), description="files beside the record that are filed with it")
     open_items: tuple[RaisedItem, ...] = Field((), description="what is left to do")
     item_updates: tuple[ItemUpdate, ...] = Field((), description="changes on earlier open items")
-    reservations: tuple[str, ...] = Field((), description="reservations under which the test is accepted")
+    reservations: tuple[Annotated[RaisedItem, BeforeValidator(_what_alone)], ...] = Field(
+        (), description="under which the test is accepted; each is an open item, and stands until a record closes it"
+    )
     remarks: str | None = Field(None)

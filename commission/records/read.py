@@ -139,6 +139,9 @@ def _sense(file: RecordFile, reader: ReadingsReader) -> None:
         reader.problem(("corrects",), "a correction says why", allowed="why_corrected: ...")
     if file.why_corrected and not file.corrects:
         reader.problem(("why_corrected",), "say which record is corrected", allowed="corrects: name of a filed record")
+    if file.reservations and file.mode != "test":
+        allowed = "open_items: ..., which a trim can raise too"
+        reader.problem(("reservations",), "a test is accepted under reservations, a trim is not", allowed=allowed)
     for number, update in enumerate(file.item_updates):
         if update.closed and not update.closed_by:
             reader.problem(("item_updates", number), "an item is closed by somebody", allowed="closed_by: ...")

@@ -5,12 +5,13 @@ from __future__ import annotations
 import csv
 import datetime as dt
 import io
+from pathlib import Path
 
 import pytest
 
 from commission.description import LoadedPlant
 from commission.prediction import SystemModel
-from commission.records import OpenItem, RecordError, file_record, history, in_force, items_csv, open_items
+from commission.records import OpenItem, RecordError, file_record, history, in_force, items_csv, open_items, read_filed
 
 from .conftest import Write
 
@@ -117,3 +118,43 @@ def test_numbers_are_not_given_twice(raised: LoadedPlant, write: Write, model: S
     text = RAISED.replace("04-21", "04-22").replace("insulate the pipe", "label the pipe")
     file_record(raised, write(text=text), model=model)
     assert [i.number for i in open_items(raised)] == [1, 2, 3, 4]
+
+
+ACCEPTED = """\
+system: store
+stage: visit
+mode: test
+started: 2026-05-14T10:20:00+01:00
+people: {operator: {name: A fitter}, witness: {name: The owner}}
+reservations:
+  - the capacity on a hot day has not been seen
+  - {what: the log of the room is to follow, who: contractor, due: 2026-06-01}
+"""
+
+
+def _standing(path: Path) -> list[tuple[int, str]]:
+    return [(s.number, s.found_in) for s in read_filed(path).filed.standing]
+
+
+def test_a_reservation_stands_until_a_record_closes_it(loaded: LoadedPlant, write: Write) -> None:
+    """Each is an open item; a retest that says nothing of it stands under it too; closing one leaves the other."""
+    first = file_record(loaded, write(text=ACCEPTED))
+    found = open_items(loaded)
+    assert [(i.number, i.raised_by, i.who, i.due) for i in found] == [
+        (1, "reservation", None, None), (2, "reservation", "contractor", dt.date(2026, 6, 1)),
+    ]  # fmt: skip
+    assert _standing(first) == [(1, first.stem), (2, first.stem)]
+    retest = ACCEPTED.split("reservations", maxsplit=1)[0].replace("05-14", "07-14")
+    again = file_record(loaded, write(text=retest))
+    assert _standing(again) == [(1, first.stem), (2, first.stem)]
+    closing = retest.replace("07-14", "07-21") + "item_updates: [{item: 1, closed: yes, closed_by: the owner}]\n"
+    last = file_record(loaded, write(text=closing))
+    assert _standing(last) == [(2, first.stem)]
+    assert _standing(first) == [(1, first.stem), (2, first.stem)]
+
+
+def test_a_trim_accepts_nothing(loaded: LoadedPlant, write: Write) -> None:
+    """Reservations in a trim are refused at their place: nothing was accepted under them."""
+    with pytest.raises(RecordError, match="a trim is not") as caught:
+        file_record(loaded, write(text=ACCEPTED.replace("mode: test", "mode: trim")))
+    assert caught.value.problems[0].path == "reservations"

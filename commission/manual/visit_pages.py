@@ -1,0 +1,213 @@
+"""One visit as it was filed: its page, and the certificate of an accepted test, printed from what was frozen."""
+
+from __future__ import annotations
+
+from pathlib import PurePosixPath
+from typing import TYPE_CHECKING, Any
+
+from commission.manual.book import Sheet, slug
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.page_display import PageDisplay
+from commission.manual.records_pages import VERDICT_CLASS, Archive, signed, title_of, when
+from commission.manual.showing import label_of, unit_of
+from commission.quantities import NOMENCLATURE, Display, Kind
+
+if TYPE_CHECKING:
+    from commission.records import FiledRecord
+    from commission.records.filed import FrozenClosure, FrozenDeviation, FrozenGuarantee, FrozenReading
+
+
+def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
+    """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it."""
+    number = any(c.isdigit() for c in r.written[:2])
+    return {
+        "label": label_of(key),
+        "written": r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}",
+        "where": r.where or "",
+        "instrument": r.instrument or "not stated",
+    }
+
+
+def _deviation(display: Display, key: str, d: FrozenDeviation, written: str) -> dict[str, Any]:
+    kind = NOMENCLATURE[key].kind
+    return {
+        "label": label_of(key),
+        "unit": unit_of(display, kind),
+        "read": display.number(d.reading, kind),
+        "written": written,
+        "expected": display.number(d.expected, kind),
+        "deviation": signed(display, kind, d.deviation),
+        "expanded": display.spread(d.expanded, kind),
+        "spread_unit": display.spread_unit(kind),
+        "significant": d.significant,
+    }
+
+
+def _limits(display: Display, kind: Kind, low: float | None, high: float | None) -> str:
+    parts = [f"at least {display.text(low, kind)}"] if low is not None else []
+    parts += [f"at most {display.text(high, kind)}"] if high is not None else []
+    return " and ".join(parts)
+
+
+def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
+    kind = NOMENCLATURE[g.quantity].kind
+    shares = [
+        f"{display.text(v, Kind.RATIO, 1)} {word}"
+        for v, word in ((g.below, "below"), (g.above, "above"))
+        if v is not None
+    ]
+    at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in g.at.items())
+    pairs = [
+        ("Promised", f"{display.text(g.guaranteed, kind)} at {at}" if at else display.text(g.guaranteed, kind)),
+        ("Tolerance", ", ".join(shares) or "none stated"),
+        ("Carried to the day by", g.carried_by),
+        ("Promised for the condition of the day", display.text(g.carried, kind) if g.carried is not None else ""),
+        ("Limit on the day", _limits(display, kind, g.limit_low, g.limit_high)),
+        ("Measured", display.text(g.measured, kind) if g.measured is not None else ""),
+        ("Measured by", g.route or ""),
+        ("Expanded uncertainty (95 %)", f"{display.spread(g.expanded, kind)} {display.spread_unit(kind)}"
+         if g.expanded is not None else ""),
+        ("Decision rule", f"{g.rule} acceptance"),
+        ("Accepted where", _limits(display, kind, g.acceptance_low, g.acceptance_high)),
+        ("Probability of conformity", display.text(g.probability, Kind.RATIO, 1) if g.probability is not None else ""),
+        ("Target frozen before the test", "yes" if g.frozen_before else "no"),
+        ("Clause", g.source or ""),
+        ("No verdict because", g.withheld or ""),
+        ("What would decide", g.what_would_decide or ""),
+    ]  # fmt: skip
+    return {
+        "label": label_of(g.quantity),
+        "outcome": g.outcome,
+        "look": VERDICT_CLASS[g.outcome],
+        "facts": [{"label": a, "text": t} for a, t in pairs if t],
+    }
+
+
+def _closure(display: Display, c: FrozenClosure) -> dict[str, Any]:
+    """Two routes held against each other, as a sentence and whether they agree."""
+    kind = NOMENCLATURE["cooling_capacity" if c.quantity == "first law" else c.quantity].kind
+    difference = (
+        f"{signed(display, kind, c.difference)} ± {display.spread(c.expanded, kind)} {display.spread_unit(kind)}"
+    )
+    if c.quantity == "first law":
+        text = f"Heat to the sink ({c.second}) less heat from the source ({c.first}) less power: {difference}"
+    else:
+        text = f"{label_of(c.quantity)} by {c.first} less that by {c.second}: {difference}"
+    return {"text": text, "agree": not c.significant}
+
+
+def _sheet_page(plant: PlantData, data: SystemData, record: FiledRecord) -> str | None:
+    """The page of the frozen sheet that a record was judged by, None where the sheet is gone or was changed."""
+    from commission.records import digest_of_file
+
+    judged = record.filed.judged_by
+    if judged.sheet is None:
+        return None
+    path = plant.loaded.folder / "records" / judged.sheet
+    if not path.is_file() or digest_of_file(path) != judged.sha256:
+        return None
+    return data.page(f"test-sheet-{slug(PurePosixPath(judged.sheet).stem)}")
+
+
+def _standing(record: FiledRecord, archive: Archive) -> list[dict[str, Any]]:
+    """The reservations under which the system stood after this visit, and which of them a later record closed."""
+    items = {i.number: i for i in archive.items}
+    found = []
+    for s in record.filed.standing:
+        item = items.get(s.number)
+        earlier = s.found_in if s.found_in != record.id else None
+        since = f"{item.closed_on} by {item.closed_by}" if item and item.closed_on else None
+        found.append(
+            {
+                "number": s.number,
+                "what": s.what,
+                "earlier": earlier,
+                "page": archive.pages.get(s.found_in),
+                "since": since,
+            }
+        )
+    return found
+
+
+def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> dict[str, Any]:
+    """What record page and certificate share."""
+    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
+    filed, file = record.filed, record.file
+    return {
+        "record": record,
+        "when": when(record),
+        "name": title_of(record),
+        "look": VERDICT_CLASS[record.verdict],
+        "people": [(role, p) for role, p in file.people.items()],
+        "conditions": [_reading(display, k, r) for k, r in filed.conditions.items()],
+        "air": f"{filed.barometric_pressure / 100:.0f} hPa"
+        + ("" if filed.barometer_measured else ", not measured: from the altitude"),
+        "guarantees": [_guarantee(display, g) for g in filed.guarantees],
+        "instruments": [(name, list(words.items())) for name, words in filed.instruments.items()],
+        "attachments": [
+            (
+                a.file,
+                f"records/{a.path}" if any(f.site_path == f"records/{a.path}" for f in archive.files) else None,
+                a.sha256,
+            )
+            for a in filed.attachments
+        ],
+        "items": [i for i in archive.items if i.found_in == record.id],
+        "closures": [_closure(display, c) for c in filed.closures],
+        "sheet_page": _sheet_page(plant, data, record),
+        "standing": _standing(record, archive),
+    }
+
+
+def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
+    """One visit as it was filed."""
+    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
+    filed = record.filed
+    written = {k: r.written for k, r in filed.readings.items()}
+    judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
+    alone = [_reading(display, k, r) for k, r in filed.readings.items() if k not in filed.deviations]
+    corrected = archive.corrected.get(record.id)
+    context = {
+        **_shared(plant, data, record, archive),
+        "deviations": judged,
+        "alone": alone,
+        "not_judged": [(label_of(k), why) for k, why in filed.not_judged.items()],
+        "routes": [
+            (r.route, label_of(r.quantity), None if r.value is None else display.of(r.quantity, r.value), r.refused)
+            for r in filed.routes
+        ],
+        "corrected_page": archive.pages.get(corrected) if corrected else None,
+        "corrects_page": archive.pages.get(record.file.corrects) if record.file.corrects else None,
+        "certificate": certificate_id(record, archive) if _accepted(record, archive) else None,
+        "records_page": data.page("records"),
+    }
+    title = f"{title_of(record)}, {record.started.date().isoformat()}"
+    return Sheet(archive.pages[record.id], title, data.group, "record.html", context, data.kicker, listed=False)
+
+
+def _accepted(record: FiledRecord, archive: Archive) -> bool:
+    return record.file.mode == "test" and record.verdict == "conforming" and record.id not in archive.corrected
+
+
+def certificate_id(record: FiledRecord, archive: Archive) -> str:
+    """The page of the certificate."""
+    return f"{archive.pages[record.id]}-certificate"
+
+
+def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[Sheet, ...]:
+    """A certificate for each accepted test, printed from what was frozen when it was filed."""
+    return tuple(
+        Sheet(
+            certificate_id(r, archive),
+            "Certificate of provisional acceptance" if r.filed.standing else "Certificate of acceptance",
+            data.group,
+            "certificate.html",
+            {**_shared(plant, data, r, archive), "plant_name": plant.name, "system_name": data.name,
+             "address": plant.loaded.plant.plant.address, "record_page": archive.pages[r.id]},
+            kicker=data.kicker,
+            short=f"Certificate {r.started.date().isoformat()}",
+            paper=True,
+        )
+        for r in archive.of(data.id)
+        if _accepted(r, archive)
+    )  # fmt: skip
