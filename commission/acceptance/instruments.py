@@ -32,8 +32,6 @@ _ROOT_12 = math.sqrt(12.0)
 _DAYS_A_YEAR = 365.25
 _ICE = 273.15
 BAROMETER = "barometric pressure"
-HEAT = ("cooling_capacity", "net_cooling_capacity", "heating_capacity")
-"""Quantities in watts that a heat meter shows; an electric meter never does."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -166,9 +164,7 @@ def instrument_budget(
     kind = NOMENCLATURE[key].kind
     label = NOMENCLATURE[key].label.lower()
     if instrument.resolved.kind is not kind:
-        raise NotCalculatedError(f"{name} measures {instrument.measures}, not the {kind.value} that {label} is")
-    if kind is Kind.POWER and (instrument.measures == "heat") is not (key in HEAT):
-        raise NotCalculatedError(f"{name} measures {instrument.measures}, which {label} is not")
+        raise NotCalculatedError(f"{name} measures {instrument.measures}; {label} is a {kind.value}")
     gauge = instrument.resolved.reference is Reference.GAUGE
     found = statement(instrument)
     shown = _as_shown(value, kind, barometric if gauge else 0.0)
@@ -194,8 +190,7 @@ def assumed_budget(
         NotCalculatedError: nothing usual is known for this kind of quantity.
     """
     kind = NOMENCLATURE[key].kind
-    word = None if key in HEAT else _WORD_OF_KIND.get(kind)
-    entry = library()["not_stated"].get(word)
+    entry = library()["not_stated"].get(_WORD_OF_KIND.get(kind))
     label = NOMENCLATURE[key].label.lower()
     if entry is None:
         raise NotCalculatedError(

@@ -116,7 +116,7 @@ def _classes(key: str, liquid_sides: frozenset[str]) -> Iterator[str]:
         yield "refrigerant temperature"
     elif kind is Kind.PRESSURE:
         yield "pressure"
-    elif kind is Kind.POWER:
+    elif kind in (Kind.POWER, Kind.HEAT_FLOW):
         yield "power"
     elif kind is Kind.VOLUME_FLOW:
         if liquid:

@@ -15,7 +15,7 @@ MEASURED: Mapping[str, tuple[Kind, Kind]] = MappingProxyType(
         "pressure": (Kind.PRESSURE, Kind.PRESSURE_DIFFERENCE),
         "vacuum": (Kind.PRESSURE, Kind.PRESSURE_DIFFERENCE),
         "pressure difference": (Kind.PRESSURE_DIFFERENCE, Kind.PRESSURE_DIFFERENCE),
-        "heat": (Kind.POWER, Kind.POWER),
+        "heat": (Kind.HEAT_FLOW, Kind.HEAT_FLOW),
         "energy": (Kind.ENERGY, Kind.ENERGY),
         "velocity": (Kind.VELOCITY, Kind.VELOCITY),
         "electric power": (Kind.POWER, Kind.POWER),

@@ -11,9 +11,8 @@ from commission.description.looked import Looked
 from commission.description.model import Compressor, Conditions, Guarantee, Medium, System
 from commission.description.positions import KeyPath
 from commission.errors import InputError, Problem, nearest
-from commission.quantities import NOMENCLATURE, Kind, Quantity, parse
+from commission.quantities import NOMENCLATURE, Quantity, parse
 
-_HEAT = ("cooling_capacity", "net_cooling_capacity", "heating_capacity")
 CheckOfASystem = Callable[[Looked, KeyPath, System], Iterator[Problem]]
 
 
@@ -82,16 +81,13 @@ def _measured_with(looked: Looked, at: KeyPath, system: System) -> Iterator[Prob
             measures = instruments[identity].measures
             if not _fits(measures, quantity):
                 fit = [one for one, i in instruments.items() if _fits(i.measures, quantity)]
-                what = "heat" if quantity.key in _HEAT else f"a {quantity.kind.value}"
-                message = f"this instrument measures {measures}; {key} is {what}"
+                message = f"this instrument measures {measures}; {key} is a {quantity.kind.value}"
                 allowed = ", ".join(fit) or "an instrument for it is not described yet"
                 yield looked.positions.problem(path, message, allowed=allowed)
 
 
 def _fits(measures: str, quantity: Quantity) -> bool:
     """An instrument reads quantities of its own kind; a meter of electric power reads no heat, nor the other way."""
-    if quantity.kind is Kind.POWER and (measures == "heat") is not (quantity.key in _HEAT):
-        return False
     return MEASURED[measures][0] is quantity.kind
 
 

@@ -255,7 +255,7 @@ def _cell(
 def _same_power(one: str, other: str) -> bool:
     """Whether two cells say one capacity in two units, such as 24 MBH and 2 tons."""
     try:
-        first, second = parse(one, Kind.POWER), parse(other, Kind.POWER)
+        first, second = parse(one, Kind.HEAT_FLOW), parse(other, Kind.HEAT_FLOW)
     except QuantityError:
         return False
     return abs(first - second) <= 0.02 * max(abs(first), abs(second))

@@ -101,10 +101,10 @@ def _system_line(data: SystemData, display: Display) -> str:
         parts[-1] += f", {display.text(s.charge, Kind.MASS)}"
     rated = data.rated.expected.get("cooling_capacity") if data.rated else None
     if rated is not None and s.duty not in ("space_heating", "water_heating"):
-        parts.append(f"{display.text(rated.value, Kind.POWER, 1)} cooling")
+        parts.append(f"{display.text(rated.value, Kind.HEAT_FLOW, 1)} cooling")
     heat = data.rated.expected.get("heating_capacity") if data.rated else None
     if heat is not None and s.duty in ("space_heating", "water_heating"):
-        parts.append(f"{display.text(heat.value, Kind.POWER, 1)} heating")
+        parts.append(f"{display.text(heat.value, Kind.HEAT_FLOW, 1)} heating")
     return " · ".join(parts)
 
 

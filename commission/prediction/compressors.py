@@ -75,7 +75,7 @@ def _polynomial(
     flow = scaled(stated.mass_flow, stated.mass_flow_unit, Kind.MASS_FLOW)
     return PolynomialCompressor(
         flow=flow,
-        capacity=scaled(stated.cooling_capacity, stated.capacity_unit, Kind.POWER),
+        capacity=scaled(stated.cooling_capacity, stated.capacity_unit, Kind.HEAT_FLOW),
         power=power,
         superheat=superheat,
         suction_temperature=stated.suction_temperature if superheat is None else None,

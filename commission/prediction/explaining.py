@@ -184,7 +184,7 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
         rating = system.evaporator.rating
         add(
             ("evaporating_temperature",),
-            facts.input("rated capacity of the cooler", rating.capacity, Kind.POWER, "evaporator.rating.capacity"),
+            facts.input("rated capacity of the cooler", rating.capacity, Kind.HEAT_FLOW, "evaporator.rating.capacity"),
         )
         add(
             ("evaporating_temperature",),

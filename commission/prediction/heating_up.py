@@ -196,7 +196,7 @@ def _result(
     warnings = tuple(dict.fromkeys(w for s in steps for w in s.at.warnings))
     try:
         power, above, delay, replaces = _element(model, steps)
-        extra = (*inputs, _place(model, "power of the element", power, Kind.POWER, "back_up.power"))
+        extra = (*inputs, _place(model, "power of the element", power, Kind.HEAT_FLOW, "back_up.power"))
         both = _explained(
             model, steps, lambda c, v: _with_element(steps, c, v, power, above, delay, replaces),
             "heat_up_with_element", extra,
@@ -271,5 +271,5 @@ def _inputs(
         found.append(Input(key, mean, NOMENCLATURE[key].kind, "calculated"))
     if any(s.loss for s in steps):
         mean = sum(s.loss * s.heat for s in steps) / heat
-        found.append(Input("mean heat loss of store and loop", mean, Kind.POWER, "calculated"))
+        found.append(Input("mean heat loss of store and loop", mean, Kind.HEAT_FLOW, "calculated"))
     return tuple(found)

@@ -17,6 +17,7 @@ _SHOWN: dict[Kind, tuple[tuple[str, int], tuple[str, int]]] = {
     Kind.PRESSURE: (("bar g", 2), ("psig", 1)),
     Kind.PRESSURE_DIFFERENCE: (("kPa", 1), ("psi", 2)),
     Kind.POWER: (("kW", 2), ("kW", 2)),
+    Kind.HEAT_FLOW: (("kW", 2), ("kBtu/h", 1)),
     Kind.ENERGY: (("kWh", 2), ("kWh", 2)),
     Kind.MASS: (("kg", 2), ("lb", 2)),
     Kind.VOLUME: (("L", 1), ("US gal", 2)),

@@ -13,6 +13,7 @@ class Kind(StrEnum):
     PRESSURE = "pressure"
     PRESSURE_DIFFERENCE = "pressure difference"
     POWER = "power"
+    HEAT_FLOW = "heat flow rate"
     ENERGY = "energy"
     MASS = "mass"
     VOLUME = "volume"
@@ -39,6 +40,7 @@ SI_UNIT: dict[Kind, str] = {
     Kind.PRESSURE: "Pa",
     Kind.PRESSURE_DIFFERENCE: "Pa",
     Kind.POWER: "W",
+    Kind.HEAT_FLOW: "W",
     Kind.ENERGY: "J",
     Kind.MASS: "kg",
     Kind.VOLUME: "m3",

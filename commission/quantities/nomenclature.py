@@ -20,11 +20,12 @@ class Quantity:
     definition: str
 
 
-T, D, P, W, R, N = (
+T, D, P, W, Q, R, N = (
     Kind.TEMPERATURE,
     Kind.TEMPERATURE_DIFFERENCE,
     Kind.PRESSURE,
     Kind.POWER,
+    Kind.HEAT_FLOW,
     Kind.RATIO,
     Kind.NUMBER,
 )
@@ -76,11 +77,11 @@ _ALL: tuple[Quantity, ...] = (
              "condensing temperature minus inlet temperature of the heat sink"),
     Quantity("pressure_ratio", "π", "Pressure ratio", N, "discharge pressure over suction pressure, both absolute"),
     Quantity("refrigerant_flow", "ṁ", "Refrigerant flow", Kind.MASS_FLOW, "mass flow through the compressor"),
-    Quantity("cooling_capacity", "Q_0", "Cooling capacity", W,
+    Quantity("cooling_capacity", "Q_0", "Cooling capacity", Q,
              "heat taken from the heat source by the refrigerant, before the heat of the evaporator fan is deducted"),
-    Quantity("net_cooling_capacity", "Q_0,net", "Net cooling capacity", W,
+    Quantity("net_cooling_capacity", "Q_0,net", "Net cooling capacity", Q,
              "cooling capacity less the power of the evaporator fan"),
-    Quantity("heating_capacity", "Q_h", "Heat to the sink", W, "heat given to the heat sink by the refrigerant"),
+    Quantity("heating_capacity", "Q_h", "Heat to the sink", Q, "heat given to the heat sink by the refrigerant"),
     Quantity("compressor_power", "P_c", "Compressor power", W, "electric power drawn by the compressor"),
     Quantity("fan_power", "P_f", "Fan and pump power", W, "electric power of the fans and pumps inside the boundary"),
     Quantity("power_input", "P", "Power input", W, "electric power drawn by all that the stated boundary includes"),

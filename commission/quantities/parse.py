@@ -35,10 +35,10 @@ _SPACES = dict.fromkeys(map(ord, "\u00a0\u202f\u2009\u2007\u2002\u2003"), " ")
 """No-break, thin and figure spaces, which good typography puts between number and unit."""
 
 _HINTS: dict[tuple[Kind, str], str] = {
-    (Kind.POWER, "ton"): "a ton can be a mass too; write refrigeration tons (12,000 Btu/h each)",
-    (Kind.POWER, "tons"): "a ton can be a mass too; write refrigeration tons (12,000 Btu/h each)",
-    (Kind.POWER, "mbtu/h"): "MBtu/h can mean thousand or million; write MBH or kBtu/h, or MMBtu/h",
-    (Kind.POWER, "mbtuh"): "MBtuh can mean thousand or million; write MBH or kBtu/h, or MMBtu/h",
+    (Kind.HEAT_FLOW, "ton"): "a ton can be a mass too; write refrigeration tons (12,000 Btu/h each)",
+    (Kind.HEAT_FLOW, "tons"): "a ton can be a mass too; write refrigeration tons (12,000 Btu/h each)",
+    (Kind.HEAT_FLOW, "mbtu/h"): "MBtu/h can mean thousand or million; write MBH or kBtu/h, or MMBtu/h",
+    (Kind.HEAT_FLOW, "mbtuh"): "MBtuh can mean thousand or million; write MBH or kBtu/h, or MMBtu/h",
     (Kind.POWER, "kva"): "kVA is apparent power; the electric power in kW is wanted here",
     (Kind.PRESSURE, "inhg"): "say what it is counted from: inHg vacuum (below the air) or inHg a (absolute)",
     (Kind.PRESSURE, "mmhg"): "say what it is counted from: mmHg a (absolute)",
@@ -54,7 +54,8 @@ _EXAMPLE: dict[Kind, str] = {
     Kind.TEMPERATURE_DIFFERENCE: "6 K or 10.8 °F difference",
     Kind.PRESSURE: "24 bar g, 25 bar a, 350 psig or 364.7 psia",
     Kind.PRESSURE_DIFFERENCE: "120 Pa or 0.5 in w.g.",
-    Kind.POWER: "3.4 kW, 11600 Btu/h or 1.8 refrigeration tons",
+    Kind.POWER: "1.6 kW or 450 W",
+    Kind.HEAT_FLOW: "3.4 kW, 11600 Btu/h or 1.8 refrigeration tons",
     Kind.MASS: "0.45 kg or 1.0 lb",
     Kind.VOLUME: "2.5 L or 60 US gal",
     Kind.VOLUME_FLOW: "1200 m3/h or 400 cfm",

@@ -77,6 +77,16 @@ def _pressure_units() -> list[Unit]:
     return units
 
 
+def _watts(kind: Kind) -> list[Unit]:
+    """Units in which both electric power and heat are written; Btu, calories and tons are of heat alone."""
+    return [
+        Unit("W", kind, 1.0, 0.0, None, ("watt", "watts")),
+        Unit("kW", kind, 1e3, 0.0, None, ("KW",)),
+        Unit("MW", kind, 1e6),
+        Unit("hp", kind, HORSEPOWER, 0.0, None, ("HP", "bhp")),
+    ]
+
+
 UNITS: tuple[Unit, ...] = (
     Unit("°C", K.TEMPERATURE, 1.0, 273.15, None, ("C", "degC", "deg. C", "℃", "Celsius", "celsius", "degrees Celsius")),
     Unit(
@@ -139,22 +149,20 @@ UNITS: tuple[Unit, ...] = (
         ("inH2O", "in wg", "in. w.g.", "in w.c.", "in. w.c.", "in wc", "in. wg", "in. wc", "inwg", "inwc"),
     ),
     Unit("ft w.g.", K.PRESSURE_DIFFERENCE, MM_WATER * 304.8, 0.0, None, ("ft wg", "ftH2O", "ft H2O", "ft w.c.")),
-    Unit("W", K.POWER, 1.0, 0.0, None, ("watt", "watts")),
-    Unit("kW", K.POWER, 1e3, 0.0, None, ("KW",)),
-    Unit("MW", K.POWER, 1e6),
-    Unit("Btu/h", K.POWER, BTU / 3600, 0.0, None, ("BTU/h", "Btuh", "BTUH", "Btu/hr", "BTU/hr")),
-    Unit("MBH", K.POWER, BTU / 3.6, 0.0, None, ("kBtu/h", "kBtu/hr", "kBtuh")),
+    *_watts(K.POWER),
+    *_watts(K.HEAT_FLOW),
+    Unit("Btu/h", K.HEAT_FLOW, BTU / 3600, 0.0, None, ("BTU/h", "Btuh", "BTUH", "Btu/hr", "BTU/hr")),
+    Unit("MBH", K.HEAT_FLOW, BTU / 3.6, 0.0, None, ("kBtu/h", "kBtu/hr", "kBtuh")),
     Unit(
         "refrigeration tons",
-        K.POWER,
+        K.HEAT_FLOW,
         12000 * BTU / 3600,
         0.0,
         None,
         ("refrigeration ton", "tons of refrigeration", "ton of refrigeration", "TR", "tons refrigeration"),
     ),
-    Unit("MMBtu/h", K.POWER, BTU / 3.6e-3, 0.0, None, ("MMBtu/hr", "MMBTU/h", "MMBtuh")),
-    Unit("kcal/h", K.POWER, 4186.8 / 3600),
-    Unit("hp", K.POWER, HORSEPOWER, 0.0, None, ("HP", "bhp")),
+    Unit("MMBtu/h", K.HEAT_FLOW, BTU / 3.6e-3, 0.0, None, ("MMBtu/hr", "MMBTU/h", "MMBtuh")),
+    Unit("kcal/h", K.HEAT_FLOW, 4186.8 / 3600),
     Unit("J", K.ENERGY, 1.0),
     Unit("kJ", K.ENERGY, 1e3),
     Unit("MJ", K.ENERGY, 1e6),

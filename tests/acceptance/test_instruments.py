@@ -171,7 +171,7 @@ def test_class_spellings(spelling: str) -> None:
 def test_wrong_kind_of_instrument_is_refused() -> None:
     """A probe cannot read a pressure."""
     probe = instrument(measures="temperature", **{"class": "IEC 60751 A"})
-    with pytest.raises(NotCalculatedError, match="pipe probe measures temperature, not the pressure"):
+    with pytest.raises(NotCalculatedError, match="pipe probe measures temperature; suction pressure is a pressure"):
         instrument_budget(probe, "suction_pressure", 4e5, AIR, name="pipe probe")
 
 
@@ -180,9 +180,9 @@ def test_heat_meters_and_electric_meters_are_not_mixed() -> None:
     heat = instrument(measures="heat", accuracy={"of_reading": "4 %"})
     electric = instrument(measures="electric power", accuracy={"of_reading": "1 %"})
     assert instrument_budget(heat, "cooling_capacity", 38e3, AIR).standard == pytest.approx(0.04 * 38e3 / 3**0.5)
-    with pytest.raises(NotCalculatedError, match="measures heat, which power input is not"):
+    with pytest.raises(NotCalculatedError, match="measures heat; power input is a power"):
         instrument_budget(heat, "power_input", 9e3, AIR)
-    with pytest.raises(NotCalculatedError, match="measures electric power, which cooling capacity is not"):
+    with pytest.raises(NotCalculatedError, match="measures electric power; cooling capacity is a heat flow rate"):
         instrument_budget(electric, "cooling_capacity", 38e3, AIR)
 
 

@@ -179,7 +179,7 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
             one(d).update(measured_with={"cooling_capacity": "power meter"}),
         ),
         "systems.one.measured_with.cooling_capacity",
-        "cooling_capacity is heat",
+        "cooling_capacity is a heat flow rate",
     ),
     "rated point without result": (
         lambda d: [point(d).pop(k) for k in ("cooling_capacity", "power_input")],

@@ -57,7 +57,7 @@ def test_the_reference_has_every_key_once() -> None:
     assert by_path["instruments.<id>.from"].form == "text"
     assert by_path["plant.units"].default == "metric"
     assert by_path["spaces.<id>.outdoors"].default == "no"
-    assert by_path["systems.<id>.rated_points[].cooling_capacity"].form.startswith("a power")
+    assert by_path["systems.<id>.rated_points[].cooling_capacity"].form.startswith("a heat flow rate")
     assert "systems.<id>.controls.weather_curve.points[].outdoor" in by_path
 
 

@@ -18,6 +18,8 @@ SHOWN = {"m³": "m3", "m²": "m2", "ft³": "ft3", "ft²": "ft2"}
         ("metric", Kind.PRESSURE, 331_000.0, "2.33 bar g"),
         ("us_customary", Kind.PRESSURE, BAROMETER, "0.0 psig"),
         ("metric", Kind.POWER, 3_450.0, "3.45 kW"),
+        ("metric", Kind.HEAT_FLOW, 3_450.0, "3.45 kW"),
+        ("us_customary", Kind.HEAT_FLOW, 3_450.0, "11.8 kBtu/h"),
         ("metric", Kind.VOLUME_FLOW, 0.5, "1800 m³/h"),
         ("metric", Kind.RATIO, 0.85, "85 %"),
         ("metric", Kind.NUMBER, 3.456, "3.46"),

@@ -18,6 +18,7 @@ from commission.description.fields import (
     MassFlow,
     Number,
     Power,
+    PowerInput,
     Ratio,
     Speed,
     Temperature,
@@ -62,7 +63,7 @@ class CompressorPoint(Part):
 
     evaporating_temperature: Temperature = Field(description="dew point at the suction")
     condensing_temperature: Temperature = Field(description="dew point at the discharge")
-    compressor_power: Capacity = Field(description="electric power")
+    compressor_power: PowerInput = Field(description="electric power")
     cooling_capacity: Capacity | None = Field(None, description="cooling capacity at the rating's superheat")
     refrigerant_flow: MassFlow | None = Field(None, description="or refrigerant flow")
     current: Current | None = Field(None, description="current in each phase")

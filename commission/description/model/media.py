@@ -8,6 +8,7 @@ from pydantic import Field
 
 from commission.description.fields import (
     Duration,
+    HeatFlow,
     Power,
     PressureDifference,
     Ratio,
@@ -55,7 +56,7 @@ class Circulation(Part):
 
     return_temperature: Temperature | None = Field(None, description="temperature at which the water comes back")
     flow: VolumeFlow | None = Field(None, description="flow of the loop")
-    heat_loss: Power | None = Field(None, description="heat that the loop loses while it runs")
+    heat_loss: HeatFlow | None = Field(None, description="heat that the loop loses while it runs")
     hours_per_day: Duration | None = Field(None, description="running time in a day")
     enters_at: Ratio | None = Field(None, description="height at which it enters the store: 0 % bottom, 100 % top")
 
@@ -75,7 +76,7 @@ class Store(Part):
     set_point: Temperature | None = Field(None, description="temperature at which heating stops")
     differential: TemperatureDifference | None = Field(None, description="fall below the set point that starts heating")
     cold_water: Temperature | None = Field(None, description="temperature of the cold water that enters")
-    standing_loss: Power | None = Field(None, description="heat loss at rest, at the set point")
+    standing_loss: HeatFlow | None = Field(None, description="heat loss at rest, at the set point")
     sensors: dict[str, StoreSensor] = Field(default_factory=dict, description="sensors by the name on the controller")
     stratified: YesNo = Field(True, description="yes where hot water stays above cold water while it is heated")
     circulation: Circulation | None = Field(None, description="circulation loop of the hot water")
@@ -87,7 +88,7 @@ class BackUp(Part):
     """An electric element or boiler that helps or replaces the machine."""
 
     by: Literal["electric element", "boiler"] = Field("electric element", description="what it is")
-    power: Power | None = Field(None, description="heat that it gives")
+    power: HeatFlow | None = Field(None, description="heat that it gives")
     where: Literal["flow pipe", "store top", "store middle", "store bottom", "separate"] | None = Field(
         None, description="where it heats"
     )

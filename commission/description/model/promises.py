@@ -11,6 +11,7 @@ from commission.description.fields import (
     Current,
     Fraction,
     PositiveNumber,
+    PowerInput,
     Ratio,
     Speed,
     Temperature,
@@ -49,7 +50,7 @@ class RatedPoint(Conditions):
 
     cooling_capacity: Capacity | None = Field(None, description="cooling capacity (see capacity_is)")
     heating_capacity: Capacity | None = Field(None, description=_means("heating_capacity"))
-    power_input: Capacity | None = Field(None, description=_means("power_input"))
+    power_input: PowerInput | None = Field(None, description=_means("power_input"))
     cooling_cop: PositiveNumber | None = Field(None, description="COP of cooling, where the power is not stated")
     heating_cop: PositiveNumber | None = Field(None, description="COP of heating, where the power is not stated")
     sensible_heat_ratio: Fraction | None = Field(None, description=_means("sensible_heat_ratio"))
@@ -72,7 +73,7 @@ class CondensingUnitPoint(Part):
     evaporating_temperature: Temperature = Field(description="dew point at the suction")
     heat_sink_inlet_temperature: Temperature = Field(description="air on the condenser")
     cooling_capacity: Capacity = Field(description="cooling capacity at the rating's suction state")
-    power_input: Capacity = Field(description="electric power of all that `includes` names")
+    power_input: PowerInput = Field(description="electric power of all that `includes` names")
 
 
 class CondensingUnit(Part):

@@ -112,9 +112,9 @@ def _in_size(facts: SystemFacts, entry: dict[str, Any]) -> bool:
     if capacity is None:
         return True
     above, up_to = entry.get("capacity_above"), entry.get("capacity_up_to")
-    if above is not None and capacity <= parse(above, Kind.POWER):
+    if above is not None and capacity <= parse(above, Kind.HEAT_FLOW):
         return False
-    return up_to is None or capacity <= parse(up_to, Kind.POWER)
+    return up_to is None or capacity <= parse(up_to, Kind.HEAT_FLOW)
 
 
 def rated_capacity(facts: SystemFacts) -> float | None:

@@ -228,7 +228,7 @@ def _inputs(duty: Duty, condensing: float, flow: float) -> tuple[Input, ...]:
         Input("condensing_temperature", condensing, Kind.TEMPERATURE, duty.origin),
         Input("compressor_superheat", duty.suction_superheat, Kind.TEMPERATURE_DIFFERENCE, duty.origin),
         Input("subcooling", duty.subcooling, Kind.TEMPERATURE_DIFFERENCE, duty.origin),
-        Input("cooling_capacity", duty.capacity, Kind.POWER, duty.origin),
+        Input("cooling_capacity", duty.capacity, Kind.HEAT_FLOW, duty.origin),
         Input("refrigerant_flow", flow, Kind.MASS_FLOW, "calculated"),
     )
 

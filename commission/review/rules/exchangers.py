@@ -180,8 +180,8 @@ def _effectiveness(facts: SystemFacts, part: str, capacity: float, most: float, 
         f"The catalogue rating of the {part} of {facts.title} is {'more than' if impossible else 'nearly all'} its "
         "air flow can carry at this temperature difference.",
         (
-            facts.plant.figure("rated heat", capacity, Kind.POWER),
-            facts.plant.figure("most that the air can carry", most, Kind.POWER),
+            facts.plant.figure("rated heat", capacity, Kind.HEAT_FLOW),
+            facts.plant.figure("most that the air can carry", most, Kind.HEAT_FLOW),
             facts.plant.figure("air flow", flow, Kind.VOLUME_FLOW),
             facts.plant.figure("share", share, Kind.RATIO),
         ),

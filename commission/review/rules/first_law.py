@@ -111,7 +111,7 @@ def _stream_figures(
     plant = facts.plant
     return (
         plant.quantity(key, stated, "stated"),
-        plant.figure("carried by flow and temperature change", carried, Kind.POWER),
+        plant.figure("carried by flow and temperature change", carried, Kind.HEAT_FLOW),
         plant.quantity(f"heat_{side}_flow", flow),
         plant.quantity(f"heat_{side}_inlet_temperature", inlet),
         plant.quantity(f"heat_{side}_outlet_temperature", outlet),
