@@ -53,6 +53,9 @@ def _medium(looked: Looked, at: KeyPath, medium: Medium) -> Iterator[Problem]:
         yield looked.positions.problem((*at, "medium"), message, allowed="mass_fraction: 30 %")
     if not brine and medium.mass_fraction is not None:
         yield looked.positions.problem((*at, "mass_fraction"), f"{medium.medium} has no glycol fraction")
+    if medium.cooled_by is not None and (medium.medium == "air" or at[-1] == "heat_source"):
+        message = "this says where the heat of a heat-sink liquid goes; here there is none"
+        yield looked.positions.problem((*at, "cooled_by"), message)
     if medium.medium != "air" and medium.relative_humidity is not None:
         yield looked.positions.problem((*at, "relative_humidity"), "only air has a relative humidity")
 

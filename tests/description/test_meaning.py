@@ -148,6 +148,11 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
         "systems.one.heat_sink.relative_humidity",
         "only air",
     ),
+    "a cooling tower behind air": (
+        lambda d: one(d)["heat_sink"].update(cooled_by="cooling tower"),
+        "systems.one.heat_sink.cooled_by",
+        "here there is none",
+    ),
     "unknown space of the air": (
         lambda d: one(d)["heat_source"].update(space="rom"),
         "systems.one.heat_source.space",

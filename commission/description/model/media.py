@@ -27,6 +27,9 @@ class Medium(Part):
     medium: MediumName = Field(description="air or a liquid")
     mass_fraction: Ratio | None = Field(None, description="glycol mass fraction")
     space: str | None = Field(None, description="id of the space the air is drawn from")
+    cooled_by: Literal["cooling tower", "dry cooler", "well, river or sea", "use of the heat"] | None = Field(
+        None, description="where the heat of a heat-sink liquid goes in the end"
+    )
     flow: VolumeFlow | None = Field(None, description="volume flow at the inlet state, at the design condition")
     flow_stages: dict[str, VolumeFlow] = Field(
         default_factory=dict, description="volume flow of each fan or pump stage, by its name on the controller"

@@ -64,6 +64,10 @@ class Site(Part):
         None, description="usual air pressure of the site, absolute, where it is known better than from the altitude"
     )
     address: str | None = Field(None, description="where the plant stands")
+    meeting_point: str | None = Field(
+        None, description="where people gather in an emergency and the fire brigade is met"
+    )
+    dwelling: YesNo = Field(False, description="yes where the plant serves dwellings alone: some duties end there")
     climate: Climate = Field(default_factory=Climate, description="design weather of the site")
     units: Literal["metric", "us_customary"] = Field("metric", description="how the manual prints numbers")
     rules: Rules = Field(default_factory=Rules, description="law and safety standard that apply")
@@ -84,6 +88,9 @@ class Space(Part):
     )
     below_ground: YesNo = Field(False, description="yes where the floor lies below ground level")
     outdoors: YesNo = Field(False, description="yes for a place in the open air")
+    hottest_air: Temperature | None = Field(
+        None, description="hottest air of this place, where it differs from plant.climate.summer_dry_bulb"
+    )
     ventilation: VolumeFlow | None = Field(None, description="air flow of the mechanical ventilation, if any")
     leak_detector: YesNo | None = Field(None, description="yes where a refrigerant detector watches the room")
     trapped_person_alarm: YesNo | None = Field(None, description="yes where a person locked in can raise an alarm")

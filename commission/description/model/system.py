@@ -99,6 +99,9 @@ class System(Part):
     evaporator: Evaporator = Field(default_factory=Evaporator, description="what is known of the evaporator")
     condenser: Condenser = Field(default_factory=Condenser, description="what is known of the condenser or gas cooler")
     receiver: Receiver | None = Field(None, description="liquid receiver; without one subcooling follows the charge")
+    relief_valves: dict[str, GaugeOrAbsolute] = Field(
+        default_factory=dict, description="set pressure of each relief valve beside the receiver's, by where it sits"
+    )
     suction_accumulator: Volume | None = Field(None, description="volume of the suction accumulator")
     suction_exchanger: SuctionExchanger | None = Field(None, description="exchanger between suction gas and liquid")
     expansion: Expansion | None = Field(None, description="the expansion device")
