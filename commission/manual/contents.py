@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.manual import plant_pages, safety_pages, system_pages
+from commission.manual.before_visit import before_the_visit
 from commission.manual.book import Book, OwnerFile
 from commission.manual.checklist_pages import checklist_page
 from commission.manual.day_sheet import day_sheet
@@ -15,7 +16,7 @@ from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
-from commission.manual.proof_pages import before_the_visit, test_sheets
+
 from commission.manual.records_pages import (
     ITEMS,
     Archive,
@@ -27,6 +28,7 @@ from commission.manual.records_pages import (
     visits,
 )
 from commission.manual.saturation import saturation_page
+from commission.manual.sheet_pages import test_sheets
 from commission.manual.single import KINDS, single_path
 from commission.manual.states import Standing
 from commission.manual.store import Store
@@ -129,7 +131,7 @@ def _system(
     """The pages of one system, in the order in which they are needed."""
     progress(f"drawing {data.id}")
     weather: tuple[Figure, ...] = charts(data, data.grid, plant.display) if data.grid else ()
-    cycle = ph_figure(data)
+    cycle = ph_figure(data, plant.display)
     found = series_of(data, archive)
     past = history_figures(data, found, plant.display)
     for figure in (*weather, *([cycle] if cycle else []), *past):

@@ -50,8 +50,8 @@ _CHARTS: tuple[tuple[str, str, Kind, tuple[tuple[str, str], ...]], ...] = (
     ("temperatures", "Temperatures", Kind.TEMPERATURE,
      (("discharge_temperature", "discharge"), ("condensing_temperature", "condensing"),
       ("evaporating_temperature", "evaporating"))),
-    ("power", "Heat and power", Kind.POWER,
-     (("cooling_capacity", "cooling"), ("heating_capacity", "heat to sink"), ("power_input", "power input"))),
+    ("heat", "Heat", Kind.HEAT_FLOW, (("cooling_capacity", "cooling"), ("heating_capacity", "heat to sink"))),
+    ("power", "Electric power", Kind.POWER, (("power_input", "power input"), ("compressor_power", "compressor"))),
 )  # fmt: skip
 
 
@@ -99,17 +99,19 @@ def _line(grid: Grid, key: str, words: str, kind: Kind, display: Display) -> Lin
     return Line(words, tuple(values), tuple(half)) if any(v is not None for v in values) else None
 
 
-def ph_figure(data: SystemData) -> Figure | None:
+def ph_figure(data: SystemData, display: Display) -> Figure | None:
     """The log p-h diagram of the rated condition, or None where the prediction has no states."""
     if data.rated is None or data.model is None or len(data.rated.states) < 3:
         return None
     states = data.rated.states
-    bubble, dew = _saturation(data.model.refrigerant, states)
+    bubble, dew = _saturation(data.model.refrigerant, states, display)
     content = PhDiagram(
         title=f"{data.name}: cycle at the rated condition",
         bubble=bubble,
         dew=dew,
-        states=tuple((s.label, round(s.h / 1e3, 3), round(s.p / 1e5, 5)) for s in states),
+        states=tuple((s.label, *_place(s.h, s.p, display)) for s in states),
+        enthalpy_unit=unit_of(display, Kind.SPECIFIC_ENTHALPY),
+        pressure_unit=display.absolute_unit,
     )
     alt = (
         f"Diagram of pressure over specific enthalpy: the cycle of {data.name} with {len(states)} states between "
@@ -119,9 +121,9 @@ def ph_figure(data: SystemData) -> Figure | None:
 
 
 def _saturation(
-    refrigerant: Refrigerant, states: tuple[StatePoint, ...]
+    refrigerant: Refrigerant, states: tuple[StatePoint, ...], display: Display
 ) -> tuple[tuple[tuple[float, float], ...], tuple[tuple[float, float], ...]]:
-    """Bubble and dew line over the pressures of the diagram, in kJ/kg and bar."""
+    """Bubble and dew line over the pressures of the diagram, in the units of the site."""
     low = refrigerant.dew_temperature(min(s.p for s in states) / 2)
     high = refrigerant.T_high
     # Steps shrink towards the top, where the lines bend.
@@ -134,9 +136,14 @@ def _saturation(
                 s = side(t)
             except NotCalculatedError:
                 continue
-            points.append((round(s.h / 1e3, 2), round(s.p / 1e5, 4)))
+            points.append(_place(s.h, s.p, display))
         lines.append(tuple(points))
     return lines[0], lines[1]
+
+
+def _place(enthalpy: float, pressure: float, display: Display) -> tuple[float, float]:
+    """A point of the diagram in the units of the site, rounded so that the same input draws the same bytes."""
+    return round(display.convert(enthalpy, Kind.SPECIFIC_ENTHALPY), 3), round(display.absolute(pressure), 5)
 
 
 def draw(figure: Figure, store: Store | None) -> dict[str, bytes]:

@@ -274,13 +274,11 @@ def _grid_note(plant: PlantData, data: SystemData, grid: Grid) -> str:
 
 def _ph_context(data: SystemData, ph: Figure, display: Display) -> dict[str, Any]:
     assert data.rated is not None
-    p_unit = "bar absolute" if display.system == "metric" else "psia"
-    factor = 1e5 if display.system == "metric" else 6894.757293168361
     states = [
         {
             "label": s.label,
             "name": s.name,
-            "p": f"{s.p / factor:.2f}" if display.system == "metric" else f"{s.p / factor:.1f}",
+            "p": f"{display.absolute(s.p):.{display.unit_and_digits(Kind.PRESSURE)[1]}f}",
             "t": display.number(s.T, Kind.TEMPERATURE),
             "h": display.number(s.h, Kind.SPECIFIC_ENTHALPY),
         }
@@ -289,7 +287,7 @@ def _ph_context(data: SystemData, ph: Figure, display: Display) -> dict[str, Any
     return {
         "figure": ph,
         "states": states,
-        "pressure_unit": p_unit,
+        "pressure_unit": display.absolute_unit,
         "temperature_unit": unit_of(display, Kind.TEMPERATURE),
         "enthalpy_unit": unit_of(display, Kind.SPECIFIC_ENTHALPY),
     }

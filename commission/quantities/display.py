@@ -113,6 +113,15 @@ class Display:
             name = "bar" if self.system == "metric" else "psi"
         return pretty(name)
 
+    @property
+    def absolute_unit(self) -> str:
+        """The unit of `absolute`: bar a or psia."""
+        return "bar a" if self.system == "metric" else "psia"
+
+    def absolute(self, pressure: float) -> float:
+        """A pressure (Pa absolute) in the site's unit, counted from vacuum and not from the air as a gauge does."""
+        return pressure / _unit(self.absolute_unit, Kind.PRESSURE).factor
+
     def of(self, key: str, value: float) -> str:
         """Number and unit of a quantity of the nomenclature."""
         return self.text(value, NOMENCLATURE[key].kind)

@@ -10,7 +10,7 @@ from commission.manual.figures.style import FIRST, INK, LINE, SOFT, new_figure, 
 
 @dataclass(frozen=True, slots=True)
 class PhDiagram:
-    """Saturation lines and the cycle: enthalpies in kJ/kg, pressures in bar absolute; state labels in cycle order."""
+    """Saturation lines and the cycle: enthalpies and absolute pressures in the named units, states in cycle order."""
 
     inches: ClassVar[tuple[float, float]] = (6.2, 4.4)
 
@@ -18,9 +18,11 @@ class PhDiagram:
     bubble: tuple[tuple[float, float], ...]
     dew: tuple[tuple[float, float], ...]
     states: tuple[tuple[str, float, float], ...]
+    enthalpy_unit: str
+    pressure_unit: str
 
 
-_NICE = (0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200)
+_NICE = (0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000)
 
 
 def draw_ph(diagram: PhDiagram) -> bytes:
@@ -48,8 +50,10 @@ def draw_ph(diagram: PhDiagram) -> bytes:
         axes.set_axisbelow(True)
         spread = max(h) - min(h)
         axes.set_xlim(min(h) - 0.22 * spread, max(h) + 0.2 * spread)
-        axes.set_xlabel("Specific enthalpy in kJ/kg")
-        axes.set_title("Pressure in bar absolute (logarithmic)", loc="left", fontsize=11.5, pad=8, color=INK)
+        axes.set_xlabel(f"Specific enthalpy in {diagram.enthalpy_unit}")
+        axes.set_title(
+            f"Pressure in {diagram.pressure_unit}, absolute (logarithmic)", loc="left", fontsize=11.5, pad=8, color=INK
+        )
         return to_svg(figure, diagram.title)
 
 
