@@ -4,7 +4,7 @@ from commission.prediction.building import boundary
 from commission.prediction.conditions import ConditionAxis
 from commission.prediction.faults import FAULTS, Fault, with_fault
 from commission.prediction.heating_up import HeatUp, heat_up
-from commission.prediction.model import Prediction, SystemModel, fit
+from commission.prediction.model import Nominal, Prediction, SystemModel, fit
 from commission.prediction.saturation import SaturationRow, saturation_table
 from commission.prediction.surface import operating_surface
 
@@ -13,6 +13,7 @@ __all__ = [
     "ConditionAxis",
     "Fault",
     "HeatUp",
+    "Nominal",
     "Prediction",
     "SaturationRow",
     "SystemModel",

@@ -52,16 +52,30 @@ class Levels:
 
 @dataclass(frozen=True, slots=True)
 class Fans:
-    """Electric power in W of fans and pumps, and which of them the stated boundary counts (0-1 each)."""
+    """Electric power in W of fans and pumps, and which of them the stated boundary counts (0-1 each).
+
+    Where stages are stated, the power follows the flow of that side by its exponent: a lower flow is a lower stage. It
+    stays where the exponent is 0: a lower flow is then taken for a dirty filter or a throttled valve.
+    """
 
     source: float
     sink: float
     source_counted: float
     sink_counted: float
+    source_exponent: float = 0.0
+    sink_exponent: float = 0.0
 
     def counted(self, sink_share: float) -> float:
         """Power inside the boundary at a share of the sink's fan power."""
         return self.source_counted * self.source + self.sink_counted * self.sink * sink_share
+
+    def at(self, source_flow: float, sink_flow: float) -> Fans:
+        """The powers at shares of the rated flows."""
+        return replace(
+            self,
+            source=self.source * source_flow**self.source_exponent,
+            sink=self.sink * sink_flow**self.sink_exponent,
+        )
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,6 +103,20 @@ class Plan:
     source_humidity: float
     surroundings: float | None
     power_factor: float
+
+    @property
+    def own_conditions(self) -> dict[str, float]:
+        """Humidity and flows where a condition does not give them: stated or assumed, and so uncertain."""
+        return {
+            "heat_source_relative_humidity": self.source_humidity,
+            "heat_source_flow": self.rated.source_flow,
+            "heat_sink_flow": self.rated.sink_flow,
+        }
+
+    def fans_at(self, media: Media) -> Fans:
+        """Fans and pumps at the flows of a condition; a flow that follows from an outlet temperature is no stage."""
+        sink = 1.0 if media.sink.outlet_wanted is not None else media.sink.volume_flow / self.rated.sink_flow
+        return self.fans.at(media.source.volume_flow / self.rated.source_flow, sink)
 
 
 def humidity(facts: Facts, a: Mapping[str, float]) -> float:
@@ -155,7 +183,8 @@ def fans_of(facts: Facts, a: Mapping[str, float], source_heat: float, sink_heat:
     elif includes is not None and sink_counted:
         pump = system.heat_sink.pump_power
         sink = pump if pump is not None else a["pump_share"] * sink_heat
-    return Fans(source, sink, source_counted, sink_counted)
+    exponents = [a["fan_power_exponent"] if m.flow_stages else 0.0 for m in (system.heat_source, system.heat_sink)]
+    return Fans(source, sink, source_counted, sink_counted, *exponents)
 
 
 def boundary(facts: Facts) -> tuple[str, ...] | None:

@@ -36,9 +36,10 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
     rated = plan.rated
     axes = [_temperature_axis(facts, side, *_design(facts, plan, case, side)) for side in ("heat_source", "heat_sink")]
     if facts.source_liquid is None:
-        wet = case.conditions.get("heat_source_relative_humidity", plan.source_humidity)
-        axes.append(ConditionAxis("heat_source_relative_humidity", wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
-    flows = [("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow)]
+        wet = _stated(facts, case, HUMIDITY, plan.source_humidity)
+        axes.append(ConditionAxis(HUMIDITY, wet, max(0.2, wet - 0.3), min(1.0, wet + 0.3)))
+    own = (("heat_source_flow", rated.source_flow), ("heat_sink_flow", rated.sink_flow))
+    flows = [(key, _stated(facts, case, key, value)) for key, value in own]
     if once_through(facts, case.conditions):
         flows.pop()
         hot = _of_design(facts, case, "heat_sink_outlet_temperature")
@@ -46,8 +47,22 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
         axes[1] = ConditionAxis(axes[1].key, cold, min(cold, KELVIN + 5.0), max(cold, hot - 15.0))
         axes.append(ConditionAxis("heat_sink_outlet_temperature", hot, hot - 15.0, hot + 15.0))
     axes += [ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow) for key, flow in flows]
-    speed = _speed_axis(facts, rated.speed)
+    speed = _speed_axis(facts, rated.speed and _stated(facts, case, "compressor_speed", rated.speed))
     return {axis.key: axis for axis in (*axes, *speed)}
+
+
+def _stated(facts: Facts, case: Case, key: str, otherwise: float) -> float:
+    """A quantity at the design condition: as the design states it, else the medium, else as it was rated or assumed."""
+    design, source, sink = facts.system.design, facts.system.heat_source, facts.system.heat_sink
+    stated = getattr(design, key) if design is not None else None
+    if stated is None and key == HUMIDITY and design is not None and design.heat_source_wet_bulb is not None:
+        dry = design.heat_source_inlet_temperature
+        if dry is not None:
+            return moist_air(dry, facts.pressure, wet_bulb=design.heat_source_wet_bulb).relative_humidity
+    if stated is None and key in case.conditions:
+        own = {HUMIDITY: source.relative_humidity, "heat_source_flow": source.flow, "heat_sink_flow": sink.flow}
+        stated = own.get(key)
+    return otherwise if stated is None else float(stated)
 
 
 def _speed_axis(facts: Facts, rated: float | None) -> tuple[ConditionAxis, ...]:
@@ -124,7 +139,8 @@ def with_weather_curve(
         flow = max(flow, curve.lowest_flow)
     if curve.highest_flow is not None:
         flow = min(flow, curve.highest_flow)
-    note = f"{NOMENCLATURE[FLOW].label.lower()} {flow - KELVIN:.1f} °C is that of the weather curve, it was not given"
+    shown = f"{NOMENCLATURE[FLOW].label.lower()} {facts.shown.of(FLOW, flow)}"
+    note = f"{shown} is that of the weather curve, it was not given"
     return {**given, FLOW: flow}, (note,)
 
 

@@ -33,8 +33,9 @@ class Found:
 def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoint) -> Found:
     """All quantities at one operating point."""
     balance = point.balance
-    power = balance.compression.power + plan.fans.counted(balance.sink_fan_share)
-    fan = plan.fans.source if facts.source_liquid is None else 0.0
+    fans = plan.fans_at(media)
+    power = balance.compression.power + fans.counted(balance.sink_fan_share)
+    fan = fans.source if facts.source_liquid is None else 0.0
     values = {
         "evaporating_temperature": balance.evaporating_temperature,
         "suction_pressure": point.suction_pressure,
@@ -51,7 +52,7 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
         "net_cooling_capacity": balance.heat_from_source - fan,
         "heating_capacity": balance.heat_to_sink,
         "compressor_power": balance.compression.power,
-        "fan_power": plan.fans.counted(balance.sink_fan_share),
+        "fan_power": fans.counted(balance.sink_fan_share),
         "power_input": power,
     }
     if heats(facts):

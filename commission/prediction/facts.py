@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from commission.description import Assumption, LoadedPlant, System
 from commission.errors import NotCalculatedError
 from commission.properties import Liquid, Refrigerant, liquid, refrigerant
-from commission.quantities import Input, Kind
+from commission.quantities import Display, Input, Kind
 
 COMPRESSOR, CONDENSER_FAN, EVAPORATOR_FAN = "compressor", "condenser fan", "evaporator fan"
 
@@ -53,6 +53,11 @@ class Facts:
     def pressure(self) -> float:
         """Barometric pressure of the site in Pa."""
         return self.loaded.barometric_pressure
+
+    @property
+    def shown(self) -> Display:
+        """How this plant shows numbers in a sentence."""
+        return Display(self.loaded.plant.plant.units, self.pressure)
 
     @property
     def transcritical(self) -> bool:

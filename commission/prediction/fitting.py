@@ -2,7 +2,8 @@
 
 With as many data as levels the fit is exact and the assumptions keep their values. With more data the assumptions
 become unknowns too, held by their ranges as prior knowledge (weighted least squares; JCGM 100:2008 for ranges as
-rectangular distributions, Gauss-Newton for the minimum). In both cases the uncertainty of any later prediction is the
+rectangular distributions, Gauss-Newton for the minimum); those about the condition alone keep their values (consider
+parameters: Schmidt, Advances in Control Systems 3, 1966). In both cases the uncertainty of any later prediction is the
 sum over causes of (prediction of the machine refitted with that cause moved by one standard uncertainty, minus the
 prediction of the fitted machine) squared.
 """
@@ -29,6 +30,11 @@ SCATTER = "scatter of rated points"
 WIDE_SCATTER = 0.05
 """Scatter from which rated points are not those of one machine at one speed: rounding and boundary leave 2 to 4 %
 (common practice, no source)."""
+
+
+CONSIDERED = frozenset({"source_flow_departure", "sink_flow_departure", "source_humidity"})
+"""Assumptions about the condition, not about the machine: the rated points do not move them, or a rated flow would be
+shown as another than the stated one. Their ranges count in full."""
 
 
 @dataclass(frozen=True)
@@ -186,7 +192,8 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     """More data than levels: levels and uncertain assumptions together, assumptions held by their ranges."""
     build(problem.facts, values, start, rated_of(problem.facts, values, problem.cases[problem.reference]))
     gaps_of(problem, values, start, None)
-    problem = replace(problem, loose=tuple(_uncertain(problem.facts, values)))
+    uncertain = _uncertain(problem.facts, values)
+    problem = replace(problem, loose=tuple(k for k in uncertain if k not in CONSIDERED))
     held: dict[str, float] = {}
     for _ in range(6):
         table = Table(problem, {**values.plain(), **held})
@@ -211,10 +218,21 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     for n, key in enumerate(problem.loose):
         sign = math.copysign(1.0, move(problem.facts.assumptions[key]))
         variants.append(Variant(key, table.plan(x + inverse[:, len(problem.free) + n]), sign))
+    for key in (k for k in uncertain if k in CONSIDERED):
+        variants.append(_considered(table, x, gaps, points, inverse @ matrix.T, key))
     for direction in scatter_directions(inverse, matrix[: len(stated)][stated]):
         variants.append(Variant(SCATTER, table.plan(x + direction), max(chi, 1.0)))
     done = _finish(problem, start, plan, points, values, tuple(variants), MARGIN * chi, dof, found)
     return replace(done, held=held)
+
+
+def _considered(table: Table, x: Array, gaps: Array, points: Sequence[Seen], gain: Array, key: str) -> Variant:
+    """The refit with one assumption moved that the fit itself leaves alone; `gain` turns gaps into steps of `x`."""
+    assumption = table.problem.facts.assumptions[key]
+    moved = table.with_value(key, assumption.value + 0.05 * move(assumption))
+    slope = (moved.gaps(x, points)[0] - gaps) / 0.05
+    whole = table.with_value(key, assumption.value + move(assumption))
+    return Variant(key, whole.plan(x - gain @ slope), math.copysign(1.0, move(assumption)))
 
 
 def _bound(assumption: Assumption, value: float) -> float | None:

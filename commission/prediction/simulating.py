@@ -34,8 +34,9 @@ def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start
     if "heat_source_outlet_temperature" in case.conditions:
         conditions.pop("heat_source_inlet_temperature")
     if case.unit is None:
-        balance = plan.machine.balance(media(facts, plan, conditions), near)
-        fans = plan.fans.counted(balance.sink_fan_share)
+        around = media(facts, plan, conditions)
+        balance = plan.machine.balance(around, near)
+        fans = plan.fans_at(around).counted(balance.sink_fan_share)
         return Seen(balance.compression, balance.heat_from_source, balance.heat_to_sink, fans, balance)
     rating = case.unit
     superheat = rating.superheat if rating.superheat is not None else a["rating_superheat"]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -44,6 +44,10 @@ class Table:
 
     problem: Problem
     values: Mapping[str, float]
+
+    def with_value(self, key: str, value: float) -> Table:
+        """The same with another value of one assumption that is not loose."""
+        return replace(self, values={**self.values, key: value})
 
     def pack(self, levels: Levels) -> Array:
         """Unknowns at these levels and all assumptions at their values."""

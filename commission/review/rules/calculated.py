@@ -36,9 +36,10 @@ def not_calculated(facts: SystemFacts) -> Iterator[Remark]:
 def warned(facts: SystemFacts) -> Iterator[Remark]:
     """What the prediction itself warns of at the design condition and on the hottest and coldest day.
 
-    Source: the physics says so where it leaves the range it was fitted to or a property its range.
+    Source: the physics says so where it leaves the range it was fitted to or a property its range. Envelope and limit
+    devices have rules of their own.
     """
-    seen: set[str] = set()
+    seen = _limits(facts)
     for outlook in facts.outlooks.values():
         for warning in outlook.prediction.warnings if outlook.prediction else ():
             if warning not in seen:
@@ -50,3 +51,15 @@ def warned(facts: SystemFacts) -> Iterator[Remark]:
                     (),
                     "Take the expected readings of such a day with this in mind.",
                 )
+
+
+def _limits(facts: SystemFacts) -> set[str]:
+    from commission.prediction.limits import beyond_limits
+
+    found = [o.prediction for o in facts.outlooks.values() if o.prediction is not None]
+    if facts.model is None:
+        return set()
+    of = facts.model.facts
+    return {
+        text for p in found for text in beyond_limits(of, {k: e.value for k, e in p.expected.items()}, p.conditions)
+    }

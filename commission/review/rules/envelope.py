@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator
 
 from commission.review.facts import SystemFacts, explained_figure
 from commission.review.finding import Remark
@@ -46,6 +46,8 @@ def outside_envelope(facts: SystemFacts) -> Iterator[Remark]:
 
     Source: the maker's envelope: a polygon of evaporating and condensing temperatures, corners in order.
     """
+    from commission.prediction.limits import inside
+
     corners = [(c.evaporating_temperature, c.condensing_temperature) for c in facts.system.compressor.envelope]
     if len(corners) < 3:
         return
@@ -62,15 +64,6 @@ def outside_envelope(facts: SystemFacts) -> Iterator[Remark]:
             "Ask the maker of the compressor whether it may run there, and find the control that keeps it inside.",
         )
         return
-
-
-def inside(corners: Sequence[tuple[float, float]], x: float, y: float) -> bool:
-    """Whether a point lies in a polygon, by counting the edges that a ray to the right crosses (even-odd rule)."""
-    crossings = 0
-    for (x1, y1), (x2, y2) in zip(corners, (*corners[1:], corners[0]), strict=True):
-        if (y1 > y) != (y2 > y) and x < x1 + (y - y1) * (x2 - x1) / (y2 - y1):
-            crossings += 1
-    return crossings % 2 == 1
 
 
 def pressure_ratio_too_high(facts: SystemFacts) -> Iterator[Remark]:
