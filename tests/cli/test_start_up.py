@@ -16,18 +16,46 @@ HEAVY = {
 VERBS = ("new", "review", "predict", "compare", "record", "build")
 
 
-def test_help_imports_click_and_nothing_heavy() -> None:
-    """`--help` may import click and this package, but none of the libraries that calculate, draw or read."""
-    code = (
-        "import sys\n"
-        "from commission.cli import main\n"
-        "try:\n    main(['--help'])\nexcept SystemExit:\n    pass\n"
-        "print('\\n'.join(sorted(sys.modules)), file=sys.stderr)\n"
-    )
+RUN = """\
+import sys
+sys.argv[1:] = {arguments}
+from commission.__main__ import main
+try:
+    main()
+except SystemExit:
+    pass
+print(chr(10).join(sorted(sys.modules)), file=sys.stderr)
+"""
+
+
+def loaded_by(*arguments: str) -> set[str]:
+    """The top-level modules that a run with these arguments loads."""
+    code = RUN.format(arguments=list(arguments))
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, encoding="utf-8", check=True)
-    loaded = {name.partition(".")[0] for name in done.stderr.splitlines()}
+    return {name.partition(".")[0] for name in done.stderr.splitlines()}
+
+
+def test_the_general_help_imports_nothing_but_this_package() -> None:
+    """`--help` is asked for often and at once: of this package it loads the entry, and no library at all."""
+    assert not loaded_by("--help") & (HEAVY | {"click"})
+
+
+def test_what_is_not_the_general_help_may_load_click_and_nothing_heavy() -> None:
+    """The version comes by way of click, but by none of the libraries that calculate, draw or read."""
+    loaded = loaded_by("--version")
     assert "click" in loaded
     assert not loaded & HEAVY
+
+
+def test_the_printed_help_is_what_the_options_say(commission: Run) -> None:
+    """`help.txt` holds what click words from verbs and options on 80 columns; a changed verb changes both."""
+    from click.testing import CliRunner
+
+    from commission.cli import cli
+
+    worded = CliRunner().invoke(cli, ["--help"], prog_name="commission", terminal_width=78)
+    for asked in ("--help", "-h"):
+        assert commission(asked).stdout == worded.output
 
 
 def test_importing_the_package_imports_nothing_heavy() -> None:
