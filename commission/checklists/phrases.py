@@ -156,7 +156,7 @@ def _steps(facts: Facts) -> str | None:
 
 def _ladder(facts: Facts) -> str | None:
     order = limit_order(facts.loaded, facts.system_id, facts.figures)
-    steps = [step for step in order.steps if not step.title.endswith("low side")]
+    steps = [step for step in order.steps if not step.low_side]
     shown = [f"{step.title} {facts.display.text(step.pressure, Kind.PRESSURE, 1)}" for step in steps]
     return " < ".join(shown) or None
 

@@ -12,7 +12,7 @@ from commission.checklists.names import names
 from commission.checklists.phrases import PHRASES
 from commission.errors import NotCalculatedError
 from commission.quantities import Display, Kind, Pressure
-from commission.safety import Figures, LeakDuty, Substance, leak_duty
+from commission.safety import Figures, LeakDuty, Substance, leak_duty_of
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -45,8 +45,7 @@ class Facts:
     @cached_property
     def duty(self) -> LeakDuty:
         """The leak-check duty of the system."""
-        law = self.loaded.plant.plant.rules.refrigerant_law
-        return leak_duty(law, self.substance, self.system.charge, self.system.sealed, self.system.duty)
+        return leak_duty_of(self.loaded, self.system_id)
 
     def space_id(self, part: str) -> str:
         """The id of the space that holds a part, or that its air comes from; empty where none is named."""

@@ -28,7 +28,7 @@ _GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     )),
     ("Leaks", (
         "room_charge_limit", "leak_concentration", "leak_share_of_lfl", "flammable_alarm_level", "co2_equivalent",
-        "leak_check_months",
+        "annex_ii_mass", "leak_check_months",
     )),
 )  # fmt: skip
 
@@ -182,7 +182,7 @@ def safety_page(plant: PlantData, data: SystemData) -> Sheet:
         charge_limits,
         fluid_of,
         hazards,
-        leak_duty,
+        leak_duty_of,
         limit_order,
         relief_duties,
         safety_figures,
@@ -194,7 +194,6 @@ def safety_page(plant: PlantData, data: SystemData) -> Sheet:
     try:
         substance = substance_of(fluid_of(loaded, data.id))
         figures = safety_figures(loaded, data.id, data.model)
-        s = data.system
         context |= {
             "marks": MARKS,
             "hazards": hazards(substance),
@@ -205,7 +204,7 @@ def safety_page(plant: PlantData, data: SystemData) -> Sheet:
             "relief": [_relief(x, data, display) for x in relief_duties(loaded, data.id, figures)],
             "dates": _law_dates(plant, data, substance),
             "warm_below": _warm_below(plant, data),
-            "duty": leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, s.charge, s.sealed, s.duty),
+            "duty": leak_duty_of(loaded, data.id),
             "assumptions_page": data.page("assumptions"),
         }
     except CommissionError as error:

@@ -8,13 +8,15 @@ from commission.safety.figure import TITLES as FIGURE_TITLES
 from commission.safety.figures import safety_figures
 from commission.safety.formulas import nitrogen_pressure
 from commission.safety.hot_water import warm_volume_below_element
-from commission.safety.leaks import LeakDuty, label_text, leak_duty
+from commission.safety.leaks import LeakDuty, label_text, leak_duty, leak_duty_of
 from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, limit_order
 from commission.safety.limits import ChargeLimit
-from commission.safety.market import MarketDate, market_dates
+from commission.safety.market import MarketDate, market_dates, rated_capacity
+from commission.safety.oils import Oil, oil_named
 from commission.safety.people import Hazards, Level, hazards
 from commission.safety.register import fluid_of, substance_of
 from commission.safety.relief import ReliefDuty, relief_duties
+from commission.safety.stamped import hottest_ambient, relief_valves
 from commission.safety.strength import strength_test_steps
 from commission.safety.substance import Substance
 
@@ -34,6 +36,7 @@ __all__ = [
     "Level",
     "LimitOrder",
     "MarketDate",
+    "Oil",
     "OutOfOrder",
     "PressureStep",
     "ReliefDuty",
@@ -45,12 +48,17 @@ __all__ = [
     "facts",
     "fluid_of",
     "hazards",
+    "hottest_ambient",
     "label_text",
     "leak_duty",
+    "leak_duty_of",
     "limit_order",
     "market_dates",
     "nitrogen_pressure",
+    "oil_named",
+    "rated_capacity",
     "relief_duties",
+    "relief_valves",
     "safety_figures",
     "strength_test_steps",
     "substance_of",

@@ -31,6 +31,7 @@ TAGS = (
     "not_toxic",
     "carbon_dioxide",
     "not_carbon_dioxide",
+    "asphyxiant",
     "heavy",
     "light",
     "walk_in",
@@ -40,7 +41,12 @@ TAGS = (
 WORDS = (
     "system",
     "refrigerant",
+    "designation",
+    "safety_class",
     "charge",
+    "lfl",
+    "address",
+    "meeting_point",
     "where",
     "rooms",
     "owner",
@@ -209,7 +215,7 @@ def _words(
 ) -> dict[str, str]:
     from commission.quantities import Kind
 
-    system = loaded.system(system_id)
+    system, site = loaded.system(system_id), loaded.plant.plant
     spaces = reachable_spaces(system)
     names = {key: loaded.plant.spaces[key].name or key for key in spaces if key in loaded.plant.spaces}
     where = "; ".join(f"{names.get(key, key)} ({', '.join(parts)})" for key, parts in spaces.items())
@@ -217,6 +223,11 @@ def _words(
     return {
         "system": system.name or system_id,
         "refrigerant": f"{substance.name} (safety class {substance.safety_class})",
+        "designation": substance.name,
+        "safety_class": substance.safety_class,
+        "lfl": _flammable_from(substance, display) or TO_FILL,
+        "address": ", ".join(part for part in (site.name, site.address or TO_FILL) if part),
+        "meeting_point": site.meeting_point or TO_FILL,
         "charge": TO_FILL if system.charge is None else display.text(system.charge, Kind.MASS),
         "where": where or TO_FILL,
         "rooms": ", ".join(names.values()) or TO_FILL,
@@ -227,6 +238,22 @@ def _words(
         "emergency_number": _emergency_number(loaded),
     }
 
+
+def _flammable_from(substance: Substance, display: Display) -> str | None:
+    """The lower flammability limit as mass in the air, and as a share of volume at 25 °C and one atmosphere."""
+    if substance.lfl is None:
+        return None
+    share = substance.lfl.value * MOLAR_VOLUME / substance.molar_mass
+    mass = f"{substance.lfl.value * 1000:.0f} g/m³"
+    if display.system != "metric":
+        mass = f"{substance.lfl.value * POUNDS_IN_1000_FT3:.1f} lb/1000 ft³"
+    return f"{share * 100:.1f} % ({mass})"
+
+
+MOLAR_VOLUME = 8.314462618 * 298.15 / 101325.0
+"""m³/mol of an ideal gas at 25 °C and one atmosphere."""
+POUNDS_IN_1000_FT3 = 28.316846592 / 0.45359237
+"""lb per 1000 ft³ in one kg/m³."""
 
 EMERGENCY_NUMBERS = {"EU 2024/573": "112", "US 40 CFR 82 and 84": "911"}
 """By the law the plant is under: 112 in Europe (Directive (EU) 2018/1972), 911 in the United States."""

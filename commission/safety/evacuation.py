@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from commission.quantities import Input, Kind
 from commission.safety.facts import fact
 from commission.safety.figure import Collector, fact_input
+from commission.safety.oils import oil_named
 from commission.safety.stamped import place
 
 if TYPE_CHECKING:
@@ -28,12 +29,15 @@ def evacuation_figures(loaded: LoadedPlant, system_id: str, substance: Substance
     limit = fact("evacuation_limit_ammonia" if ammonia else "evacuation_limit")
     out.add("evacuation_limit", limit.value, "safety_rule_figure", (fact_input(limit),), limit)
     coldest = _coldest_evaporation(loaded, system_id)
-    dry = coldest is not None and coldest < COLD_EVAPORATION
+    oil = oil_named(system.compressor.oil)
+    cold = coldest is not None and coldest < COLD_EVAPORATION
+    dry = cold or (oil is not None and oil.draws_water)
     target = limit if ammonia else fact("evacuation_target_dry" if dry else "evacuation_target")
     inputs = [fact_input(target)]
     if coldest is not None:
         inputs.append(Input("coldest evaporation stated", coldest, Kind.TEMPERATURE, "description"))
-    out.add("evacuation_target", target.value, "safety_rule_figure", tuple(inputs), target)
+    note = "" if oil is None or ammonia else f"{target.says}; here {system.compressor.oil}: {oil.says}"
+    out.add("evacuation_target", target.value, "safety_rule_figure", tuple(inputs), target, note=note)
     _hold(loaded, system_id, substance, ammonia, out)
     out.add(
         "rise_test_hold",

@@ -76,6 +76,7 @@ TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
         "emergency_ventilation": ("emergency ventilation of the machinery room, EN 378-3", Kind.VOLUME_FLOW),
         "emergency_ventilation_ashrae15": ("emergency ventilation of the machinery room, ASHRAE 15", Kind.VOLUME_FLOW),
         "co2_equivalent": ("CO₂ equivalent of the charge", Kind.MASS),
+        "annex_ii_mass": ("gases of annex II, section 1, in the charge", Kind.MASS),
         "leak_check_months": ("months between leak checks", Kind.NUMBER),
     }
 )

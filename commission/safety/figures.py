@@ -15,7 +15,7 @@ from commission.safety.formulas import (
     emergency_ventilation_ashrae15,
     emergency_ventilation_en378,
 )
-from commission.safety.leaks import leak_duty
+from commission.safety.leaks import annex_ii_mass, leak_duty_of
 from commission.safety.limit_devices import limit_devices
 from commission.safety.register import fluid_of, substance_of
 from commission.safety.strength import pressure_test_figures
@@ -139,7 +139,7 @@ def _enough_air_changes(loaded: LoadedPlant, room: str, space: Space, out: Colle
 
 def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Collector) -> None:
     system = loaded.system(system_id)
-    duty = leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, system.charge, system.sealed, system.duty)
+    duty = leak_duty_of(loaded, system_id)
     rule = Fact("leak_check", 0.0, Kind.NUMBER, duty.document, duty.edition, duty.mark, duty.reason)
     if system.charge is None or substance.gwp is None:
         why = "the charge is not stated" if system.charge is None else "the register has no GWP"
@@ -151,8 +151,14 @@ def _leaks(loaded: LoadedPlant, system_id: str, substance: Substance, out: Colle
             Input("GWP", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})"),
         )
         out.add("co2_equivalent", system.charge * gwp.value, "co2_equivalent", inputs, rule, mark=gwp.mark)
+    own = None if system.charge is None else annex_ii_mass(substance, system.charge)
+    if own is None:
+        why = "the charge is not stated" if system.charge is None else "the refrigerant holds no gas of annex II"
+        out.refuse(why, "annex_ii_mass")
+    else:
+        out.add("annex_ii_mass", own.value, own.method, own.inputs, rule)
     if duty.months is None:
         out.refuse(duty.reason, "leak_check_months")
     else:
-        measured = () if duty.measure is None else duty.measure.inputs
+        measured = tuple(dict.fromkeys(given for measure in duty.measures for given in measure.inputs))
         out.add("leak_check_months", float(duty.months), "leak_check_interval", measured, rule)

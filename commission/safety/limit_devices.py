@@ -8,7 +8,7 @@ from commission.errors import NotCalculatedError
 from commission.quantities import Input, Kind
 from commission.safety.facts import Fact, fact
 from commission.safety.figure import Collector, fact_input
-from commission.safety.stamped import hottest_ambient, place, stamped_pressures
+from commission.safety.stamped import hottest_ambient, place, relief_valves, stamped_pressures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -22,7 +22,7 @@ def limit_devices(
     """Highest settings that the nameplate allows, the hottest expected day, and saturation at the settings."""
     system = loaded.system(system_id)
     high = next((s for s in stamped_pressures(loaded, system_id) if s.side == "high"), None)
-    relief = system.receiver is not None and system.receiver.relief_valve is not None
+    relief = bool(relief_valves(system))
     if high is None:
         out.refuse(
             "the allowable pressure of the high side is not stated", "high_pressure_limit_highest", "relief_highest"

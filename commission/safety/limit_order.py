@@ -2,25 +2,28 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 from commission.quantities import Explained, Input, Kind
 from commission.safety.facts import fact
 from commission.safety.figure import Figures
-from commission.safety.stamped import stamped_pressures
+from commission.safety.stamped import relief_valves, stamped_pressures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
+    from commission.quantities import Pressure
 
 
 @dataclass(frozen=True, slots=True)
 class PressureStep:
-    """One pressure of the ladder: Pa absolute, and where it comes from."""
+    """One pressure of the ladder: Pa absolute, where it comes from, and whether it protects the low side alone."""
 
     title: str
     pressure: float
     origin: str
+    low_side: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,16 +55,40 @@ def limit_order(loaded: LoadedPlant, system_id: str, figures: Figures) -> LimitO
         figure = figures.get(key)
         if figure is not None:
             steps.append(PressureStep(figure.title, figure.value, "calculated"))
-    named = [("high-pressure limit", f"{base}.controls.high_pressure_limit", system.controls.high_pressure_limit)]
-    if system.receiver is not None:
-        named.append(("relief valve", f"{base}.receiver.relief_valve", system.receiver.relief_valve))
-    for title, path, pressure in named:
-        if pressure is not None:
-            steps.append(PressureStep(title, loaded.absolute(pressure), str(loaded.where(path))))
+    setting = system.controls.high_pressure_limit
+    if setting is not None:
+        path = f"{base}.controls.high_pressure_limit"
+        steps.append(PressureStep("high-pressure limit", loaded.absolute(setting), str(loaded.where(path))))
+    for valve in _reliefs(loaded, system_id):
+        steps.append(PressureStep(valve.title, valve.pressure, str(loaded.where(valve.path)), valve.low_side))
     for stamped in stamped_pressures(loaded, system_id):
-        steps.append(PressureStep(f"allowable pressure, {stamped.side} side", stamped.absolute, stamped.origin))
+        title = f"allowable pressure, {stamped.side} side"
+        steps.append(PressureStep(title, stamped.absolute, stamped.origin, stamped.side == "low"))
     problems = (*_limit_problems(loaded, system_id, figures), *_standstill_problems(loaded, system_id, figures))
     return LimitOrder(tuple(sorted(steps, key=lambda step: step.pressure)), problems)
+
+
+@dataclass(frozen=True, slots=True)
+class _Relief:
+    title: str
+    path: str
+    pressure: float
+    low_side: bool
+
+
+def _reliefs(loaded: LoadedPlant, system_id: str) -> list[_Relief]:
+    """The relief valves; one that opens no higher than the low side bears, below the high side, protects that side."""
+    stamped = {s.side: s.absolute for s in stamped_pressures(loaded, system_id)}
+    low, high = stamped.get("low"), stamped.get("high")
+    valves = relief_valves(loaded.system(system_id))
+    found = []
+    for name, pressure in valves.items():
+        setting = loaded.absolute(pressure)
+        path = "receiver.relief_valve" if name == "receiver" else f"relief_valves.{name}"
+        low_side = name != "receiver" and low is not None and high is not None and setting <= low < high
+        title = "relief valve" if len(valves) == 1 else f"relief valve, {name}"
+        found.append(_Relief(title, f"systems.{system_id}.{path}", setting, low_side))
+    return found
 
 
 def _stated(title: str, value: float, origin: str) -> Explained:
@@ -69,7 +96,7 @@ def _stated(title: str, value: float, origin: str) -> Explained:
 
 
 def _limit_problems(loaded: LoadedPlant, system_id: str, figures: Figures) -> tuple[OutOfOrder, ...]:
-    controls, receiver = loaded.system(system_id).controls, loaded.system(system_id).receiver
+    controls = loaded.system(system_id).controls
     found: list[OutOfOrder] = []
     highest = figures.get("high_pressure_limit_highest")
     path = f"systems.{system_id}.controls.high_pressure_limit"
@@ -99,35 +126,34 @@ def _limit_problems(loaded: LoadedPlant, system_id: str, figures: Figures) -> tu
                     "check condenser and settings before raising anything",
                 )
             )
-    if receiver is not None and receiver.relief_valve is not None:
-        relief = loaded.absolute(receiver.relief_valve)
-        path = f"systems.{system_id}.receiver.relief_valve"
-        shown = _stated("relief valve", relief, str(loaded.where(path)))
-        top = figures.get("relief_highest")
-        if top is not None and relief > top.value * (1 + 1e-9):
-            found.append(
-                OutOfOrder(
-                    "the relief valve opens above the allowable pressure",
-                    "error",
-                    path,
-                    (shown, top.explained),
-                    top.source,
-                    "fit a relief valve for the stamped pressure",
-                )
-            )
-        if controls.high_pressure_limit is not None and loaded.absolute(controls.high_pressure_limit) >= relief:
-            limit = _stated("high-pressure limit", loaded.absolute(controls.high_pressure_limit), "description")
-            found.append(
-                OutOfOrder(
-                    "the relief valve opens before the high-pressure limit stops the compressor",
-                    "error",
-                    path,
-                    (shown, limit),
-                    "EN 378-2, 2016, table 3",
-                    "set the limit below the relief valve",
-                )
-            )
+    for valve in _reliefs(loaded, system_id):
+        found += _relief_problems(loaded, valve, figures, controls.high_pressure_limit)
     return tuple(found)
+
+
+def _relief_problems(
+    loaded: LoadedPlant, valve: _Relief, figures: Figures, limit: Pressure | None
+) -> Iterator[OutOfOrder]:
+    shown = _stated(valve.title, valve.pressure, str(loaded.where(valve.path)))
+    top = figures.get("relief_highest")
+    if top is not None and valve.pressure > top.value * (1 + 1e-9):
+        yield OutOfOrder(
+            f"the {valve.title} opens above the allowable pressure",
+            "error",
+            valve.path,
+            (shown, top.explained),
+            top.source,
+            "fit a relief valve for the stamped pressure",
+        )
+    if limit is not None and not valve.low_side and loaded.absolute(limit) >= valve.pressure:
+        yield OutOfOrder(
+            f"the {valve.title} opens before the high-pressure limit stops the compressor",
+            "error",
+            valve.path,
+            (shown, _stated("high-pressure limit", loaded.absolute(limit), "description")),
+            "EN 378-2, 2016, table 3",
+            "set the limit below the relief valve",
+        )
 
 
 def _standstill_problems(loaded: LoadedPlant, system_id: str, figures: Figures) -> tuple[OutOfOrder, ...]:

@@ -78,8 +78,8 @@ def _servicing(system: System) -> str:
     return "refrigeration" if cooling else "air conditioning and heat pumps"
 
 
-def _capacity(system: System) -> float | None:
-    """The largest capacity stated, W."""
+def rated_capacity(system: System) -> float | None:
+    """The largest capacity that is stated, in W; None where none is."""
     stated: list[float | None] = []
     for point in system.rated_points:
         stated += [point.cooling_capacity, point.heating_capacity]
@@ -90,7 +90,7 @@ def _capacity(system: System) -> float | None:
 
 def _kinds(law: str, system: System) -> Iterator[str]:
     """The kinds of equipment of the law that a system can be."""
-    capacity = _capacity(system)
+    capacity = rated_capacity(system)
     if law == US:
         yield from _american(system)
         return

@@ -42,6 +42,7 @@ def substance_of(fluid: Refrigerant) -> Substance:
         molar_mass=fluid.molar_mass,
         critical_temperature=fluid.T_critical,
         components=tuple(entry.composition),
+        fractions=entry.composition,
         lfl=_known(entry.lfl),
         practical_limit=_known(entry.practical_limit),
         atel_odl=_known(entry.atel_odl),

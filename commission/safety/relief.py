@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from commission.quantities import Explained, Input, Kind
 from commission.safety.facts import Fact, fact
 from commission.safety.figure import Figures
-from commission.safety.stamped import place, stamped_pressures
+from commission.safety.stamped import place, relief_valves, stamped_pressures
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -30,7 +30,8 @@ def relief_duties(loaded: LoadedPlant, system_id: str, figures: Figures) -> tupl
     """Every reason for a relief device that the description shows (RSIF IF-08 after EN 378-2; standstill)."""
     system = loaded.system(system_id)
     base = f"systems.{system_id}"
-    relief = system.receiver is not None and system.receiver.relief_valve is not None
+    relief = bool(relief_valves(system))
+    in_receiver = system.receiver is not None and system.receiver.relief_valve is not None
     found: list[ReliefDuty] = []
     rule = fact("relief_compressor_displacement")
     displacement = system.compressor.displacement
@@ -53,7 +54,7 @@ def relief_duties(loaded: LoadedPlant, system_id: str, figures: Figures) -> tupl
         found.append(
             ReliefDuty(
                 "the receiver needs two relief valves on a change-over valve",
-                relief,
+                in_receiver,
                 f"{base}.receiver.relief_valve",
                 shown,
                 rule.source,

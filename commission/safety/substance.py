@@ -3,11 +3,9 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
-
-if TYPE_CHECKING:
-    pass
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Literal
 
 AIR_MOLAR_MASS = 0.02896
 """kg/mol of dry air: a heavier gas lies on the floor."""
@@ -38,6 +36,8 @@ class Substance:
     rcl: Known | None
     gwp: Known | None
     liquid_only: bool
+    fractions: Mapping[str, float] = field(default_factory=dict, hash=False)
+    """Mass share of each component."""
     listed: bool = False
     """Holds a gas of annex I or II of EU 2024/573."""
 

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Literal
 
 from commission.errors import NotCalculatedError
 from commission.records import FiledRecord, history, in_force
-from commission.safety import MARKS, LeakDuty, fact, fluid_of, leak_duty, substance_of
+from commission.safety import MARKS, LeakDuty, fact, leak_duty_of
 from commission.upkeep.counting import Day, counted_from, last_done, last_failed
 from commission.upkeep.entries import LAW, DutyEntry, Mark
 from commission.upkeep.intervals import Interval
@@ -118,7 +118,7 @@ def _of_system(loaded: LoadedPlant, identity: str, upkeep: Upkeep, records: Sequ
 
     try:
         listed = stages(loaded, identity)
-        law = _leak_duty(loaded, identity)
+        law = leak_duty_of(loaded, identity)
     except NotCalculatedError as error:
         yield _without(loaded, identity, str(error))
         return
@@ -138,12 +138,6 @@ def _of_system(loaded: LoadedPlant, identity: str, upkeep: Upkeep, records: Sequ
         )
         left_out = upkeep.left_out.get((identity, entry.id)) or (item.left_out if item else None)
         yield _duty(loaded, identity, entry, origin, item, timing, days, left_out)
-
-
-def _leak_duty(loaded: LoadedPlant, identity: str) -> LeakDuty:
-    system = loaded.system(identity)
-    substance = substance_of(fluid_of(loaded, identity))
-    return leak_duty(loaded.plant.plant.rules.refrigerant_law, substance, system.charge, system.sealed, system.duty)
 
 
 def _timing(entry: DutyEntry, law: LeakDuty) -> _Timing:

@@ -70,6 +70,37 @@ def test_carbon_dioxide_card_says_that_it_has_no_smell(plant: Plants) -> None:
     assert "Touch no switch" not in found
 
 
+def test_the_caller_can_say_where_and_meet_the_fire_brigade(plant: Plants) -> None:
+    """Address and meeting point stand on the card; what the description does not say leaves room to write."""
+    loaded = plant()
+    assert "Say where: Test yard, ____" in text(card(loaded))
+    path = loaded.folder / "plant.yaml"
+    stated = "  name: Test yard\n  address: 1 Far Lane\n  meeting_point: the gate by the road"
+    path.write_text(path.read_text(encoding="utf-8").replace("  name: Test yard", stated), encoding="utf-8")
+    found = text(card(load_plant(loaded.folder)))
+    assert "Say where: Test yard, 1 Far Lane." in found
+    assert "Gather at: the gate by the road." in found
+
+
+@pytest.mark.parametrize(
+    ("name", "percent"), [("R-290", "2.1 %"), ("R-32", "14.4 %"), ("R-717", "16.7 %"), ("R-600a", "1.8 %")]
+)
+def test_the_level_at_which_it_burns(plant: Plants, name: str, percent: str) -> None:
+    """ISO 817 gives the limit in both units: R-290 2.1 %, R-32 14.4 %, R-717 16.7 %, R-600a 1.8 %."""
+    assert f"It can burn from {percent}" in text(card(plant(refrigerant=name, charge="0.1 kg")))
+
+
+@pytest.mark.parametrize("name", ["R-290", "R-454C", "R-134a", "R-744", "R-717"])
+def test_first_aid_for_eyes_skin_frost_and_breath(plant: Plants, name: str) -> None:
+    """Every card says what to do for each, and what not to do (safety data sheets; common practice in first aid)."""
+    (aid,) = [s for s in card(plant(refrigerant=name, charge="0.4 kg")).sections if s.title == "If someone is hurt"]
+    words = "\n".join(aid.lines)
+    for part in ("Breathed it in", "Not breathing", "Eyes", "Frozen skin", "do not rub"):
+        assert words.count(part) >= 1
+    assert words.count("Breathed it in") == words.count("Not breathing") == 1
+    assert ("on skin: rinse" in words) is (name == "R-717")
+
+
 def test_every_refrigerant_says_what_it_does_to_people() -> None:
     """No refrigerant of the register comes without an effect on people."""
     from commission.properties.register import register
@@ -94,6 +125,19 @@ sections:
     assert found.replaced
     assert found.language == "de"
     assert text(found) == "Alle hinaus: 0.45 kg R-290 (safety class A3)"
+
+
+def test_a_card_in_another_language_needs_no_english_word(plant: Plants) -> None:
+    """The words that are names and figures bring none; what is not stated is a line to write on."""
+    loaded = plant()
+    names = ("designation", "safety_class", "charge", "lfl", "address", "meeting_point", "rooms", "owner")
+    lines = "\n".join(f"      - '{{{word}}}'" for word in (*names, "contractor", "emergency_number", "system"))
+    own = f"title: Karte\nlanguage: de\nsections:\n  - title: Alles\n    lines:\n{lines}\n"
+    (loaded.folder / "emergency_card.yaml").write_text(own, encoding="utf-8")
+    found = text(card(loaded)).splitlines()
+    assert found[:4] == ["R-290", "A3", "0.45 kg", "2.1 % (38 g/m³)"]
+    assert found[4] == "Test yard, ________________"
+    assert set(found[5:]) == {"________________", "Cold room, Yard", "112", "one"}
 
 
 @pytest.mark.parametrize(

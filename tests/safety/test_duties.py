@@ -133,7 +133,7 @@ def test_every_quantity_of_the_room_has_a_title_and_a_kind() -> None:
             shown += [limit.value for limit in (*space.limits, *space.alternatives) if limit.value is not None]
             shown += [space.concentration] if space.concentration is not None else []
         duty = leak_duty(EU, substance, system.charge, system.sealed, system.duty)
-        shown += [duty.measure] if duty.measure is not None else []
+        shown += duty.measures
         for explained in shown:
             assert explained.quantity in QUANTITY_TITLES
             assert explained.method in methods()

@@ -38,12 +38,50 @@ def test_sealed_equipment_is_exempt_below_ten_tonnes(tonnes: float, applies: boo
     assert leak_duty(EU, substance("R-410A"), tonnes * 1000 / 2087.5, True, "comfort_cooling").applies is applies
 
 
-def test_a_blend_with_an_annex_one_gas_counts_as_a_whole() -> None:
-    """R-454B holds R-32: its whole CO₂ equivalent counts, not the mass of its unsaturated part."""
-    duty = leak_duty(EU, substance("R-454B"), 12.0, False, "space_heating")
-    assert duty.measure is not None
-    assert duty.measure.value == pytest.approx(12 * 465.2, rel=1e-3)
+def test_a_blend_is_counted_both_ways_and_the_stricter_decides() -> None:
+    """EU 2024/573 article 5(1): 2.4 kg of R-454C (GWP 146, 78.5 % of R-1234yf) is 0.35 t, below 5 t, but holds 1.88 kg
+    of an annex II gas, above 1 kg: twelve months; composition by ISO 817 (AHRI 700 alike)."""
+    duty = leak_duty(EU, substance("R-454C"), 2.4, False, "cold_storage")
+    equivalent, mass = duty.measures
+    assert equivalent.value == pytest.approx(2.4 * 146, rel=0.02)
+    assert mass.value == pytest.approx(2.4 * 0.785, rel=1e-3)
     assert duty.months == 12
+    assert "below 5 t" in duty.reason
+    assert "at or above 1 kg" in duty.reason
+
+
+@pytest.mark.parametrize(
+    ("name", "kilograms", "months"),
+    [
+        ("R-454B", 12.0, 12),  # 5.6 t and 3.7 kg
+        ("R-454B", 3.2, None),  # 1.5 t and 0.998 kg (31.1 % R-1234yf)
+        ("R-454B", 3.3, 12),  # 1.5 t, but 1.03 kg
+        ("R-454C", 12.8, 6),  # 1.9 t, but 10.05 kg
+        ("R-448A", 36.1, 6),  # 50 t and 9.7 kg (20 % R-1234yf, 7 % R-1234ze(E))
+        ("R-410A", 12.0, 12),  # 25 t, no annex II gas
+    ],
+)
+def test_the_boundaries_of_blends(name: str, kilograms: float, months: int | None) -> None:
+    """Either count alone brings the duty, and the shorter interval stands."""
+    assert leak_duty(EU, substance(name), kilograms, False, "cold_storage").months == months
+
+
+@pytest.mark.parametrize(("kilograms", "applies"), [(2.54, False), (2.56, True)])
+def test_sealed_blends_are_exempt_below_two_kilograms_of_annex_two(kilograms: float, applies: bool) -> None:
+    """EU 2024/573 article 5: hermetically sealed and labelled, below 2 kg of annex II gases: 2.55 kg of R-454C."""
+    assert leak_duty(EU, substance("R-454C"), kilograms, True, "water_heating").applies is applies
+
+
+@pytest.mark.parametrize(
+    ("kilograms", "sealed", "dwelling", "applies"),
+    [(2.9, True, True, False), (3.0, True, True, True), (2.9, True, False, True), (2.9, False, True, True)],
+)
+def test_small_sealed_equipment_in_dwellings_is_exempt(
+    kilograms: float, sealed: bool, dwelling: bool, applies: bool
+) -> None:
+    """EU 2024/573 article 5: hermetically sealed, in residential buildings, less than 3 kg; R-1234yf counts by mass."""
+    duty = leak_duty(EU, substance("R-1234yf"), kilograms, sealed, "space_heating", dwelling=dwelling)
+    assert duty.applies is applies
 
 
 @pytest.mark.parametrize("name", ["R-290", "R-717", "R-744", "R-600a"])

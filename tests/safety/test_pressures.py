@@ -6,11 +6,11 @@ from collections.abc import Callable
 
 import pytest
 
-from commission.description import LoadedPlant
+from commission.description import LoadedPlant, load_plant
 from commission.errors import NotCalculatedError
 from commission.properties import refrigerant
 from commission.quantities import methods
-from commission.safety import FIGURE_TITLES, limit_order, safety_figures, strength_test_steps
+from commission.safety import FIGURE_TITLES, hottest_ambient, limit_order, safety_figures, strength_test_steps
 
 Plants = Callable[..., LoadedPlant]
 
@@ -157,6 +157,50 @@ def test_every_figure_is_found_or_explained(plant: Plants) -> None:
         assert figure.explained.method in methods()
         assert figure.document
         assert figure.sureness
+
+
+@pytest.mark.parametrize(
+    ("oil", "micron"),
+    [("POE 32", 300), ("PAG 100", 300), ("PVE 68", 300), ("mineral oil 46", 500), ("AB 32", 500), ("house mix", 500)],
+)
+def test_an_oil_that_draws_water_asks_for_a_deeper_vacuum(plant: Plants, oil: str, micron: int) -> None:
+    """Common practice, no source: 200 to 300 micron with polyolester, PAG and PVE, 500 micron with others."""
+    loaded = plant(controls=f"high_pressure_limit: 22 bar g}}\n    compressor: {{oil: {oil}")
+    found = safety_figures(loaded, "one").found["evacuation_target"]
+    assert found.value / 0.133322387415 == pytest.approx(micron, rel=1e-3)
+    assert found.value < safety_figures(loaded, "one").found["rise_test_limit"].value
+    assert (oil in found.note) is (oil != "house mix")
+
+
+def test_one_hottest_ambient_for_the_site(plant: Plants) -> None:
+    """Units in one yard share the site's figure whatever each is designed for; a hotter place states its own."""
+    loaded = plant(controls="high_pressure_limit: 22 bar g}\n    design: {heat_sink_inlet_temperature: 43 °C")
+    found = hottest_ambient(loaded, "one")
+    assert found is not None
+    assert found[0] == pytest.approx(303.15)
+    path = loaded.folder / "plant.yaml"
+    text = path.read_text(encoding="utf-8")
+    path.write_text(text.replace("outdoors: yes", "outdoors: yes, hottest_air: 38 °C"), encoding="utf-8")
+    hotter = hottest_ambient(load_plant(loaded.folder), "one")
+    assert hotter is not None
+    assert hotter[0] == pytest.approx(311.15)
+    path.write_text(text.replace("climate: {summer_dry_bulb: 30 °C}", "climate: {}"), encoding="utf-8")
+    designed = hottest_ambient(load_plant(loaded.folder), "one")
+    assert designed is not None
+    assert designed[0] == pytest.approx(316.15)
+
+
+def test_each_relief_valve_stands_in_the_order(plant: Plants) -> None:
+    """EN 378-2 table 3: a valve of the low side may open below the high-pressure limit, one of the high side not."""
+    valves = "high_pressure_limit: 22 bar g}\n    relief_valves: {low side: 17 bar g, condenser: CONDENSER"
+    good = plant(receiver="volume: 2 L", controls=valves.replace("CONDENSER", "28 bar g"))
+    order = limit_order(good, "one", safety_figures(good, "one"))
+    assert order.problems == ()
+    assert [s.title for s in order.steps if s.low_side] == ["relief valve, low side", "allowable pressure, low side"]
+    assert gauge(good, safety_figures(good, "one").found["high_pressure_limit_highest"].value) == pytest.approx(25.2)
+    bad = plant(receiver="volume: 2 L", controls=valves.replace("CONDENSER", "21 bar g"))
+    (problem,) = limit_order(bad, "one", safety_figures(bad, "one")).problems
+    assert problem.title == "the relief valve, condenser opens before the high-pressure limit stops the compressor"
 
 
 def test_evacuation_follows_refrigerant_and_charge(plant: Plants) -> None:
