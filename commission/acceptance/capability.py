@@ -13,6 +13,7 @@ from commission.acceptance.choosing import cannot_be_read, choose_instrument
 from commission.acceptance.conditions import HUMIDITY, WET, with_air
 from commission.acceptance.decision import Decision
 from commission.acceptance.evaluation import Evaluation, evaluate
+from commission.acceptance.expectation import Deviation
 from commission.acceptance.guarantee import Terms, carry, terms_of
 from commission.acceptance.instruments import Reading
 from commission.acceptance.judgement import GuaranteeVerdict, coarse, verdict
@@ -25,6 +26,7 @@ if TYPE_CHECKING:
 
 NEVER_READ = ("carnot_cop", "refrigerant_flow", "net_cooling_capacity", "fan_power")
 """Expected values that nobody reads on site with ordinary instruments."""
+NO_INSTRUMENT = "no instrument of the plant reads it"
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,7 +34,8 @@ class ReadingCapability:
     """One quantity that will be read: what is expected, with which instrument, and which deviation would be seen.
 
     `budget` is that of reading minus expectation; a deviation larger than `detectable` (its expanded uncertainty, 95 %)
-    is significant.
+    is significant. `of_reading` is the standard uncertainty of the reading alone, `of_expectation` that of what it is
+    compared with: model, properties, and the condition that is read too.
     """
 
     key: str
@@ -40,6 +43,16 @@ class ReadingCapability:
     instrument: str | None
     budget: Budget
     detectable: float
+    of_reading: float
+    of_expectation: float
+
+    @property
+    def good_enough(self) -> bool:
+        """Whether the instrument is no coarser than what its reading is compared with: a better one would show little.
+
+        At equality a perfect instrument would make the smallest deviation seen smaller by 29 % (1 - 1/sqrt 2).
+        """
+        return self.of_reading <= self.of_expectation
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,7 +79,8 @@ class GuaranteeCapability:
 
 @dataclass(frozen=True)
 class Capability:
-    """What the instruments of the plant can prove on a forecast day."""
+    """What the instruments of the plant can prove on a forecast day. `filled` names conditions that were not given and
+    are taken as rated; `not_read` gives for each quantity that nobody will read the reason."""
 
     conditions: Mapping[str, Measured]
     readings: tuple[ReadingCapability, ...]
@@ -74,6 +88,7 @@ class Capability:
     refusals: tuple[Refusal, ...]
     not_read: Mapping[str, str]
     warnings: tuple[str, ...]
+    filled: tuple[str, ...] = ()
 
 
 def capability(
@@ -82,7 +97,6 @@ def capability(
     forecast: Mapping[str, float] | None = None,
     *,
     on: dt.date | None = None,
-    without_instrument: str = "left out",
 ) -> Capability:
     """Work through a visit whose readings are exactly what is expected at the forecast condition (keys, SI).
 
@@ -94,24 +108,26 @@ def capability(
         NotCalculatedError: the model has no solution at the forecast.
     """
     prediction = model.predict(forecast)
-    conditions, lacking = _readings(loaded, model, prediction.conditions, without_instrument)
+    conditions, lacking = _readings(loaded, model, prediction.conditions)
     expected = {k: e.value for k, e in prediction.expected.items() if k not in NEVER_READ}
-    direct, unread = _readings(loaded, model, expected, without_instrument)
+    direct, unread = _readings(loaded, model, expected)
     found = evaluate(loaded, model, _with_inlets(conditions, prediction.conditions, model), direct, on=on)
     instruments = {r.key: r.instrument for r in (*conditions, *direct)}
-    rows = tuple(
-        ReadingCapability(d.key, d.expected.explained, instruments.get(d.key), d.budget, d.budget.expanded())
-        for d in found.deviations
-    )
+    rows = tuple(_row(d, instruments.get(d.key)) for d in found.deviations)
     seen = {r.key for r in rows}
     not_read = {k: why for k, why in {**lacking, **unread}.items() if k not in seen}
     guarantees = tuple(_guarantee(loaded, model, terms_of(g), found) for g in loaded.system(model.system_id).guarantee)
     warnings = (*found.warnings, *(g.coarse for g in guarantees if g.coarse))
-    return Capability(found.conditions, rows, guarantees, found.refusals, not_read, warnings)
+    return Capability(found.conditions, rows, guarantees, found.refusals, not_read, warnings, prediction.filled)
+
+
+def _row(d: Deviation, instrument: str | None) -> ReadingCapability:
+    apart = d.reading.budget.standard, d.expected.budget.standard
+    return ReadingCapability(d.key, d.expected.explained, instrument, d.budget, d.budget.expanded(), *apart)
 
 
 def _readings(
-    loaded: LoadedPlant, model: SystemModel, values: Mapping[str, float], why: str
+    loaded: LoadedPlant, model: SystemModel, values: Mapping[str, float]
 ) -> tuple[list[Reading], dict[str, str]]:
     """A reading for each value that an instrument of the plant can take, and the rest."""
     system, instruments = loaded.system(model.system_id), loaded.plant.instruments
@@ -124,7 +140,7 @@ def _readings(
             continue
         name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
         if name is None:
-            lacking[key] = f"no instrument of the plant reads {NOMENCLATURE[key].label.lower()}: {why}"
+            lacking[key] = NO_INSTRUMENT
         else:
             found.append(Reading(key, value, name))
     return found, lacking

@@ -41,6 +41,7 @@ FROM_PRESSURES = (
     "condenser_temperature_difference",
 )
 """Readings that are worked out from a gauge."""
+NO_PORTS = "the unit is factory sealed and has no ports for gauges"
 
 
 def cannot_be_read(key: str, system: System) -> str | None:
@@ -51,12 +52,9 @@ def cannot_be_read(key: str, system: System) -> str | None:
     """
     if not system.sealed or any(p in system.measured_with for p in PRESSURES) or key in system.measured_with:
         return None
-    label = NOMENCLATURE[key].label.lower()
     if key in PRESSURES:
-        return f"{label}: the unit is factory sealed and has no ports for gauges"
-    if key in FROM_PRESSURES:
-        return f"{label}: it follows from a pressure, and the unit is factory sealed and has no ports for gauges"
-    return None
+        return NO_PORTS
+    return f"it follows from a pressure, and {NO_PORTS}" if key in FROM_PRESSURES else None
 
 
 def choose_instrument(

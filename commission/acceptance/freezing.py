@@ -45,6 +45,7 @@ def make_sheet(
     model: SystemModel,
     ranges: Mapping[str, Sequence[float]],
     *,
+    held: Mapping[str, float] | None = None,
     prepared_for: dt.date | None = None,
     title: str = "",
     keys: Sequence[str] | None = None,
@@ -52,23 +53,25 @@ def make_sheet(
 ) -> TestSheet:
     """Freeze expectations and guarantees over a range of conditions.
 
-    `ranges` gives for each condition of the range its grid values in SI, ascending; all other conditions are held as
-    designed. `keys` chooses the expectations (all that the model gives, where None). The largest error of reading
-    between the points is found at the middle of every cell and frozen with each target.
+    `ranges` gives for each condition of the range its grid values in SI, ascending; all other conditions are held at
+    their value in `held` (SI), or else as designed. `keys` chooses the expectations (all that the model gives, where
+    None). The largest error of reading between the points is found at the middle of every cell and frozen with each
+    target.
 
     Raises:
         InputError: a condition that this system does not have, no value, or too many points.
         NotCalculatedError: the model or a guarantee has no value somewhere in the range.
     """
     axes = _axes(model, ranges)
-    held = {k: v for k, v in model.rated_condition.items() if k not in ranges}
+    there = model.predict(held).conditions if held else model.rated_condition
+    held = {k: v for k, v in there.items() if k not in ranges}
     where, between = points(axes), middles(axes)
     predicted = [model.predict({**held, **at}) for at in where]
     middle = [model.predict({**held, **at}) for at in between]
     wanted = [k for k in (keys or predicted[0].expected) if all(k in p.expected for p in (*predicted, *middle))]
     centre = between[len(between) // 2]
     targets = _expected_targets(loaded, model, axes, predicted, middle, between, wanted, {**held, **centre})
-    targets += _guarantee_targets(loaded, model, axes, where, between, centre)
+    targets += _guarantee_targets(loaded, model, held, axes, where, between, centre)
     used = dict.fromkeys(name for t in targets for name in t.instruments)
     return TestSheet(
         model.system_id,
@@ -160,6 +163,7 @@ def _expected_targets(
 def _guarantee_targets(
     loaded: LoadedPlant,
     model: SystemModel,
+    held: Mapping[str, float],
     axes: tuple[Axis, ...],
     where: Sequence[Mapping[str, float]],
     between: Sequence[Mapping[str, float]],
@@ -168,7 +172,6 @@ def _guarantee_targets(
     from commission.prediction import boundary
 
     system = loaded.system(model.system_id)
-    held = {k: v for k, v in model.rated_condition.items() if k not in {a.key for a in axes}}
     proof = capability(loaded, model, {**held, **centre}).guarantees
     targets = []
     for guarantee, proved in zip(system.guarantee, proof, strict=True):

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import datetime as dt
+from collections.abc import Mapping
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -9,33 +11,42 @@ from commission.cli.options import parse_conditions
 from commission.errors import InputError, Problem, nearest
 
 if TYPE_CHECKING:
+    from commission.acceptance import TestSheet
     from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
 
 STEP = 5.0  # K between the points of a frozen grid; the error of reading between them is frozen with each target
 POINTS = 3  # points of a range of any other kind
 
 
-def freeze(loaded: LoadedPlant, system: str, name: str, ranges: tuple[str, ...]) -> Path:
-    """Freeze a test sheet over `KEY=LOW..HIGH` ranges and return its path.
+def freeze(
+    loaded: LoadedPlant,
+    model: SystemModel,
+    name: str,
+    grids: Mapping[str, tuple[float, ...]],
+    held: Mapping[str, float] | None,
+    day: dt.date | None,
+) -> tuple[TestSheet, Path]:
+    """Freeze a test sheet over the `grids` of its conditions, all others `held` (SI), and return it with its path.
 
     Raises:
-        InputError: no range, a range that cannot be read, or a condition that the system does not have.
         NotCalculatedError: the system has no expectation somewhere in the range.
+        ExistsError: another sheet of this name is frozen already.
     """
     from commission.acceptance import make_sheet
-    from commission.prediction import fit
     from commission.records import file_sheet
 
-    if not ranges:
-        raise InputError(
-            Problem(
-                "a frozen sheet needs the range of the day",
-                path="--over",
-                allowed="for example --over 'heat_sink_inlet_temperature=15 °C..35 °C'",
-            )
-        )
-    ends = {key: _grid(key, low, high) for key, low, high in (_range(r, loaded.barometric_pressure) for r in ranges)}
-    model = fit(loaded, system)
+    sheet = make_sheet(loaded, model, grids, held=held, prepared_for=day, title=name)
+    return sheet, file_sheet(loaded, sheet, name)
+
+
+def grids_of(ranges: tuple[str, ...], model: SystemModel, barometric_pressure: float) -> dict[str, tuple[float, ...]]:
+    """The points of each `KEY=LOW..HIGH` range in SI.
+
+    Raises:
+        InputError: a range that cannot be read, or a condition that the system does not have.
+    """
+    ends = {key: _grid(key, low, high) for key, low, high in (_range(r, barometric_pressure) for r in ranges)}
     unknown = [key for key in ends if key not in model.condition_axes]
     if unknown:
         known = ", ".join(model.condition_axes)
@@ -46,7 +57,7 @@ def freeze(loaded: LoadedPlant, system: str, name: str, ranges: tuple[str, ...])
                 for key in unknown
             )
         )  # fmt: skip
-    return file_sheet(loaded, make_sheet(loaded, model, ends, title=name), name)
+    return ends
 
 
 def _range(text: str, barometric_pressure: float) -> tuple[str, float, float]:

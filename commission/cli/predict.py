@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import json
 from collections.abc import Mapping
 from pathlib import Path
@@ -33,32 +34,52 @@ COVERAGE = 2.0  # expanded uncertainty as shown and printed: about 95 % (JCGM 10
 @click.option(
     "--freeze", "name", metavar="NAME", help="Freeze a test sheet of this name instead. Needs --system, --over."
 )
-@click.option("--over", "ranges", multiple=True, metavar="KEY=LOW..HIGH", help="Range of the day for --freeze.")
+@click.option(
+    "--before-visit",
+    "page",
+    metavar="FILE",
+    type=click.Path(dir_okay=False, path_type=Path),
+    help="Write the page to print before a visit at --at instead, with the grid for the pencil. Needs --system, --at.",
+)
+@click.option("--over", "ranges", multiple=True, metavar="KEY=LOW..HIGH", help="Range of the day for these two.")
+@click.option(
+    "--visit",
+    "day",
+    type=click.DateTime(["%Y-%m-%d"]),
+    help="Day of the visit for these two: calibrations count on it.",
+)
 @json_option
 def command(
-    plant: Path, system: str | None, pairs: tuple[str, ...], name: str | None, ranges: tuple[str, ...], as_json: bool
+    plant: Path,
+    system: str | None,
+    pairs: tuple[str, ...],
+    name: str | None,
+    page: Path | None,
+    ranges: tuple[str, ...],
+    day: dt.datetime | None,
+    as_json: bool,
 ) -> None:
     """Print what each gauge, probe and meter of PLANT should read.
 
     Without --at this is the rated condition of each system. Uncertainties are expanded ones, coverage factor 2.
+
+    Before a visit, --before-visit writes one file to print for a forecast day: what each reading should be, which
+    instruments are good enough, whether a test could decide and what would, and the targets over the range of the day.
+    With --freeze that range becomes the sheet that both sides sign.
     """
-    for option, given in (("--at", pairs), ("--freeze", name), ("--over", ranges)):
-        if given and system is None:
-            message = f"{option} needs --system, since each system has conditions of its own"
-            raise InputError(Problem(message, path=option))
-    if ranges and name is None:
-        raise InputError(Problem("--over belongs to --freeze; a single condition is given by --at", path="--over"))
+    _check_options(system, pairs, name, page, ranges, day)
     from commission.description import load_plant
 
     loaded = load_plant(plant)
     known = list(loaded.plant.systems)
     if system is not None:
         check_system(system, known)
-    if name is not None and system is not None:
-        from commission.cli.freeze import freeze
+        if name is not None or page is not None:
+            from commission.cli.before import before_visit
 
-        click.echo(str(freeze(loaded, system, name, ranges)))
-        return
+            for path in before_visit(loaded, system, pairs, name, page, ranges, day.date() if day else None):
+                click.echo(str(path))
+            return
     known_axes = _axes(loaded, system) if pairs and system is not None else ()
     conditions = parse_conditions(pairs, loaded.barometric_pressure, known_axes) if pairs else None
     results = {name: _predict(loaded, name, conditions) for name in ([system] if system else known)}
@@ -73,6 +94,41 @@ def command(
         title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
         blocks.append(_as_text(title, result, display, given=bool(pairs)))
     click.echo("\n\n".join(blocks))
+
+
+def _check_options(
+    system: str | None,
+    pairs: tuple[str, ...],
+    name: str | None,
+    page: Path | None,
+    ranges: tuple[str, ...],
+    day: dt.datetime | None,
+) -> None:
+    """Which options need which.
+
+    Raises:
+        InputError: one stands without what it needs.
+    """
+    ahead = (("--before-visit", page), ("--freeze", name))
+    for option, given in (("--at", pairs), *ahead, ("--over", ranges)):
+        if given and system is None:
+            message = f"{option} needs --system, since each system has conditions of its own"
+            raise InputError(Problem(message, path=option))
+    if page is not None and not pairs:
+        raise InputError(
+            Problem("--before-visit needs the forecast", path="--at",
+                    allowed="for example --at 'heat_sink_inlet_temperature=31 °C'")
+        )  # fmt: skip
+    if name is not None and page is None and not ranges:
+        raise InputError(
+            Problem("a frozen sheet needs the range of the day", path="--over",
+                    allowed="for example --over 'heat_sink_inlet_temperature=15 °C..35 °C'")
+        )  # fmt: skip
+    if name is None and page is None:
+        for option, stands in (("--over", bool(ranges)), ("--visit", day is not None)):
+            if stands:
+                message = f"{option} belongs to --freeze or --before-visit; a single condition is given by --at"
+                raise InputError(Problem(message, path=option))
 
 
 def _axes(loaded: LoadedPlant, system: str) -> tuple[str, ...]:

@@ -16,7 +16,6 @@ from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
-
 from commission.manual.records_pages import (
     ITEMS,
     Archive,

@@ -74,16 +74,34 @@ def gather(loaded: LoadedPlant, progress: Callable[[str], None]) -> PlantData:
     return PlantData(loaded, display, systems)
 
 
+def gather_one(loaded: LoadedPlant, model: SystemModel) -> PlantData:
+    """The plant with one system only, whose model is fitted already.
+
+    Raises:
+        NotCalculatedError: it cannot be calculated at its rated condition.
+    """
+    identity = model.system_id
+    slug = slugs(tuple(loaded.plant.systems))[identity]
+    model = remembering(model)
+    data = _calculated(loaded, identity, slug, model, model.predict())
+    return PlantData(loaded, PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure), (data,))
+
+
 def _system(loaded: LoadedPlant, identity: str, slug: str, progress: Callable[[str], None]) -> SystemData:
     from commission.prediction import fit
 
     progress(f"calculating {identity}")
-    system = loaded.system(identity)
     try:
         model = remembering(fit(loaded, identity))
         rated = model.predict()
     except CommissionError as error:
-        return SystemData(identity, slug, system, None, _reason(error), None, loaded.assumptions(identity), None, {})
+        assumed = loaded.assumptions(identity)
+        return SystemData(identity, slug, loaded.system(identity), None, _reason(error), None, assumed, None, {})
+    return _calculated(loaded, identity, slug, model, rated)
+
+
+def _calculated(loaded: LoadedPlant, identity: str, slug: str, model: SystemModel, rated: Prediction) -> SystemData:
+    system = loaded.system(identity)
     grid = make_grid(loaded, system, model)
     try:
         effects = model.assumption_effects(_far_condition(grid, rated))

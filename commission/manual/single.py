@@ -48,24 +48,34 @@ def without_links_away(body: Markup) -> Markup:
 
 def single_files(book: Book, env: jinja2.Environment, templates: Path, plant: PlantData) -> dict[str, bytes]:
     """The text of each single file by its place in the site."""
+    return {
+        single_path(data, kind): one_file(book, env, templates, plant, book.get(data.page(kind)))
+        for data in plant.systems
+        for kind, _ in KINDS
+    }
+
+
+def one_file(book: Book, env: jinja2.Environment, templates: Path, plant: PlantData, sheet: Sheet) -> bytes:
+    """One page as a file that needs no other."""
     paper = paper_style(plant.name, plant.loaded.digest).decode("utf-8")
     look = (templates / "style" / "manual.css").read_text(encoding="utf-8")
     style = f"\n{look}\n@media print {{\n{paper}\n}}\n"
     script = "\n" + (templates / "scripts" / "page.js").read_text(encoding="utf-8") + "\n"
-    allowed = policy(style=style, script=script)
-    page = env.get_template("single.html")
-    found = {}
-    for data in plant.systems:
-        for kind, _ in KINDS:
-            sheet: Sheet = book.get(data.page(kind))
-            text = page.render(
-                sheet=sheet,
-                plant_name=plant.name,
-                digest=plant.loaded.digest,
-                policy=allowed,
-                style=Markup(style),
-                script=Markup(script),
-                body=without_links_away(render_body(env, book, sheet)),
-            )
-            found[single_path(data, kind)] = text.encode("utf-8")
-    return found
+    text = env.get_template("single.html").render(
+        sheet=sheet,
+        plant_name=plant.name,
+        digest=plant.loaded.digest,
+        policy=policy(style=style, script=script),
+        style=Markup(style),
+        script=Markup(script),
+        body=without_links_away(render_body(env, book, sheet)),
+    )
+    return text.encode("utf-8")
+
+
+class LoneBook(Book):
+    """The book of a page that stands alone: its links are taken out, so that they need not lead anywhere."""
+
+    def link(self, here: str, target: str, anchor: str = "") -> str:
+        """An address that `without_links_away` takes out."""
+        return f"{target}.html"

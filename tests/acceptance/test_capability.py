@@ -31,7 +31,7 @@ def test_every_instrument_is_put_to_use(cold_room: LoadedPlant, cold_room_model:
         assert row.expected.value == expected[key].value
         assert row.detectable == pytest.approx(row.budget.expanded())
         assert row.detectable > 0.0
-    assert "no instrument of the plant reads heat source flow" in found.not_read["heat_source_flow"]
+    assert found.not_read["heat_source_flow"] == "no instrument of the plant reads it"
 
 
 def test_undecidable_guarantee_names_a_change_that_decides(cold_room: LoadedPlant, tmp_path: Path) -> None:
@@ -147,3 +147,20 @@ def test_a_coarse_test_decides_by_the_simple_rule_and_is_named(cold_room: Loaded
     agreed = write_plant(tmp_path / "agreed", text)
     bound = capability(agreed, fit(agreed, "cold-room"), {SINK: 300.15}).guarantees[0]
     assert (bound.decided, bound.coarse) == (False, None)
+
+
+def test_a_better_gauge_is_advised_only_where_it_shows_more(cold_room: LoadedPlant, tmp_path: Path) -> None:
+    """An instrument is good enough where its doubt is no larger than that of the expectation: a gauge of 0.5 % of its
+    span is, one of 5 % is not and sees a deviation only when it is half as large again."""
+    coarse = COLD_ROOM.replace("accuracy: {of_span: 0.5 %}", "accuracy: {of_span: 5 %}")
+    assert coarse != COLD_ROOM
+    plant = write_plant(tmp_path / "coarse", coarse)
+    found = {}
+    for name, one in (("fine", cold_room), ("coarse", plant)):
+        rows = {r.key: r for r in capability(one, fit(one, "cold-room")).readings}
+        found[name] = rows["discharge_pressure"]
+        for r in rows.values():
+            assert r.good_enough == (r.of_reading <= r.of_expectation)
+    assert found["fine"].good_enough
+    assert not found["coarse"].good_enough
+    assert found["coarse"].detectable > 1.5 * found["fine"].detectable

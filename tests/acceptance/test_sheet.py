@@ -203,3 +203,14 @@ def test_measured_capacity_is_the_same_with_and_without_a_sheet(tmp_path: Path) 
         for a, b in zip(live.routes, frozen.routes, strict=True):
             assert a.measured.value == pytest.approx(b.measured.value, rel=1e-5)
     assert powers[0] < 0.5 * powers[2]
+
+
+def test_conditions_of_the_forecast_are_held(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """A sheet made for a forecast holds its other conditions there, and its points are the model at them."""
+    made = make_sheet(cold_room, cold_room_model, {SINK: (295.15, 300.15)}, held={SOURCE: 277.15, SINK: 290.0})
+    assert made.conditions[SOURCE] == 277.15
+    assert SINK not in made.conditions
+    for target in made.targets_for("expectation"):
+        for at, value in zip((295.15, 300.15), target.values, strict=True):
+            there = cold_room_model.predict({**made.conditions, SINK: at})
+            assert value == pytest.approx(there.expected[target.key].value, rel=1e-6)

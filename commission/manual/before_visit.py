@@ -1,0 +1,165 @@
+"""Before the visit: can these instruments prove it? For the rated condition in the manual, for any day as one file."""
+
+from __future__ import annotations
+
+import datetime as dt
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+from commission.errors import NotCalculatedError
+from commission.manual.book import Sheet
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.sheet_pages import SHEET_KEYS, sheet_context
+from commission.manual.showing import COVERAGE, How, label_of, show_how, size_text
+from commission.manual.system_pages import conditions_words
+from commission.quantities import NOMENCLATURE, Display, Kind
+
+if TYPE_CHECKING:
+    from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, TestSheet
+
+
+@dataclass(frozen=True, slots=True)
+class ProofRow:
+    """One reading: what is expected, with which instrument, and the smallest deviation that would be seen."""
+
+    label: str
+    expected: str
+    instrument: str
+    detectable: str
+    enough: str
+    how: How
+
+
+def before_the_visit(plant: PlantData, data: SystemData) -> Sheet:
+    """What the instruments of the plant can prove, at the rated condition and over the weather."""
+    context: dict[str, Any] = {"because": data.because, "day": None, "grids": (), "system_id": data.id}
+    if data.model is not None:
+        try:
+            context |= _context(plant, data, None, None)
+        except NotCalculatedError as error:
+            context["because"] = error.problems[0].message
+    return Sheet(data.page("before-the-visit"), "Before the visit", data.group, "before.html", context, data.kicker)
+
+
+def for_the_day(
+    plant: PlantData,
+    data: SystemData,
+    forecast: Mapping[str, float],
+    sheet: TestSheet,
+    *,
+    frozen: str | None = None,
+    on: dt.date | None = None,
+) -> Sheet:
+    """The page for a forecast condition (SI), with the targets of `sheet` as the grid for the pencil.
+
+    `frozen` is the name of the sheet where it is frozen; `on` is the day of the visit, for the calibrations.
+
+    Raises:
+        InputError: a condition that this system does not have.
+        NotCalculatedError: nothing can be expected at the forecast.
+    """
+    grid = sheet_context(plant, data, sheet, frozen)
+    context = {
+        **grid,
+        **_context(plant, data, forecast, on),
+        "day": on.isoformat() if on else None,
+        "digest": sheet.digest if frozen else grid["description"],
+    }
+    title = "Before the visit" if on is None else f"Before the visit of {on.isoformat()}"
+    page = data.page("before-the-visit-of-the-day")
+    return Sheet(page, title, data.group, "before.html", context, data.kicker, listed=False, paper=True)
+
+
+def _context(
+    plant: PlantData, data: SystemData, forecast: Mapping[str, float] | None, on: dt.date | None
+) -> dict[str, Any]:
+    from commission.acceptance import capability
+
+    assert data.model is not None
+    found = capability(plant.loaded, data.model, forecast, on=on)
+    order = {k: n for n, k in enumerate(SHEET_KEYS)}
+    readings = sorted(found.readings, key=lambda r: order.get(r.key, len(order)))
+    return {
+        "because": None,
+        "conditions": conditions_words(plant, data, data.model.predict(forecast).conditions),
+        "filled": [label_of(k).lower() for k in found.filled] if forecast is not None else [],
+        "rows": [_proof(r, data, plant.display) for r in readings],
+        "promises": [_promise(g, plant.display) for g in found.guarantees],
+        "not_read": _by_reason(found),
+        "warnings": found.warnings,
+        "refusals": [(r.route, label_of(r.key), r.reason) for r in found.refusals],
+        "assumptions_page": data.page("assumptions"),
+        "weather": _over_weather(plant, data, forecast, on),
+        "axis": data.grid.title if data.grid else "",
+    }
+
+
+def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
+    kind = NOMENCLATURE[r.key].kind
+    alone = size_text(display, kind, COVERAGE * r.of_reading)
+    return ProofRow(
+        label_of(r.key),
+        display.text(r.expected.value, kind),
+        r.instrument or "from the readings above",
+        size_text(display, kind, r.detectable),
+        "" if r.good_enough else f"coarser than the calculation, ± {alone} by itself",
+        show_how(r.expected, display, data.assumptions),
+    )
+
+
+def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
+    kind = NOMENCLATURE[g.terms.quantity].kind
+    measured = g.verdict.measured
+    spread = g.verdict.budget.expanded() if g.verdict.budget else None
+    return {
+        "label": label_of(g.terms.quantity),
+        "decided": g.decided,
+        "expected": display.text(measured.value, kind) if measured else None,
+        "limit": _limit(g, display, kind),
+        "expanded": f"{display.spread(spread, kind)} {display.spread_unit(kind)}".strip()
+        if spread is not None
+        else None,
+        "route": g.verdict.route,
+        "withheld": g.verdict.withheld,
+        "what": g.verdict.what_would_decide,
+    }
+
+
+def _limit(g: GuaranteeCapability, display: Display, kind: Kind) -> str:
+    d = g.decision
+    if d is None:
+        return ""
+    parts = [f"at least {display.text(d.limit_low, kind)}"] if d.limit_low is not None else []
+    parts += [f"at most {display.text(d.limit_high, kind)}"] if d.limit_high is not None else []
+    return " and ".join(parts)
+
+
+def _by_reason(found: Capability) -> list[tuple[str, str]]:
+    """What nobody will read, one line for each reason: the reason, and the quantities in one list."""
+    reasons: dict[str, list[str]] = {}
+    for key, why in found.not_read.items():
+        reasons.setdefault(why, []).append(label_of(key).lower())
+    return [(why, ", ".join(labels)) for why, labels in reasons.items()]
+
+
+def _over_weather(
+    plant: PlantData, data: SystemData, forecast: Mapping[str, float] | None, on: dt.date | None
+) -> list[tuple[str, list[tuple[str, bool]]]]:
+    """For each temperature of the grid, whether each guarantee could be decided there; all else as on the day."""
+    from commission.acceptance import capability
+
+    if data.grid is None or data.model is None or not data.system.guarantee:
+        return []
+    rows = []
+    for point in data.grid.points:
+        if point.prediction is None:
+            continue
+        at = {**data.grid.fixed, **(forecast or {}), data.grid.key: point.temperature}
+        try:
+            found = capability(plant.loaded, data.model, at, on=on)
+        except NotCalculatedError:
+            continue
+        head = plant.display.text(point.temperature, Kind.TEMPERATURE, 0)
+        rows.append((head, [(label_of(g.terms.quantity), g.decided) for g in found.guarantees]))
+    return rows
