@@ -12,7 +12,13 @@ if TYPE_CHECKING:
 
 __all__ = ["BuildResult", "FolderStore", "Store", "build", "templates_folder"]
 
-_HOME = {"BuildResult": "building", "build": "building", "FolderStore": "store", "Store": "store", "templates_folder": "where"}
+_HOME = {
+    "BuildResult": "building",
+    "build": "building",
+    "FolderStore": "store",
+    "Store": "store",
+    "templates_folder": "where",
+}
 
 
 def __getattr__(name: str) -> Any:
