@@ -10,7 +10,7 @@ import json
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cache, cached_property
 from importlib.resources import files
 from typing import Any
 
@@ -20,21 +20,22 @@ from numpy.typing import NDArray
 
 Array = NDArray[np.float64]
 COLUMNS = ("ln_p", "h", "s", "ln_rho")
-PIECES = 128  # of the range of a series; polynomials of degree 7 repeat a series of 41 terms there to 1e-12
-_Pieces = dict[int, tuple[tuple[float, ...], ...]]
+PIECES = 1024  # of the range of a series; polynomials of degree 4 repeat a series of 41 terms there to 1e-12
+DEGREE = 4
 
 
-def _piece(series: Array, n: int) -> tuple[tuple[float, ...], ...]:
-    """Polynomials in the distance from the middle of piece `n`, one for each row of `series`, lowest power first.
+@cache
+def _to_pieces(terms: int) -> Array:
+    """What turns the coefficients of a series into those of its pieces: shape (PIECES, DEGREE + 1, terms).
 
-    Horner's rule on eight floats is several times quicker than a series of numpy at a single point.
+    On each piece stands a polynomial in the distance from its middle, lowest power first. Horner's rule on a few floats
+    is several times quicker at a single point than a series of numpy.
     """
-    middle = (2 * n + 1) / PIECES - 1.0
-    offsets = nodes(8) / PIECES
-    values = np.atleast_2d(chebyshev.chebval(middle + offsets, series.T))
-    powers = np.vander(offsets * PIECES, 8, increasing=True)
-    local = np.linalg.solve(powers, values.T).T * float(PIECES) ** np.arange(8)
-    return tuple(tuple(row) for row in local.tolist())
+    offsets = nodes(DEGREE + 1) / PIECES
+    powers = np.linalg.inv(np.vander(offsets * PIECES, DEGREE + 1, increasing=True))
+    powers *= (float(PIECES) ** np.arange(DEGREE + 1))[:, None]
+    middles = (2.0 * np.arange(PIECES) + 1.0) / PIECES - 1.0
+    return np.asarray(powers @ chebyshev.chebvander(middles[:, None] + offsets, terms - 1))
 
 
 @dataclass(frozen=True)
@@ -71,25 +72,36 @@ class Line:
         return slope * math.sqrt(1.0 - T / self.T_critical) - offset
 
     @cached_property
-    def _pieces(self) -> _Pieces:
-        return {}
+    def _pieces(self) -> tuple[Array, list[tuple[tuple[float, ...], tuple[float, ...]] | None]]:
+        """Coefficients on each piece; those of visited pieces as floats: of ln p, and of the other three in a row."""
+        found = np.moveaxis(_to_pieces(self.coefficients.shape[1]) @ self.coefficients.T, 2, 1)
+        return found.reshape(PIECES, -1), [None] * PIECES
 
-    def row(self, T: float) -> tuple[float, float, float, float]:
-        """(ln p, h, s, ln density) at `T` (K), which the caller has checked to lie on the line."""
+    def _at(self, T: float) -> tuple[float, tuple[tuple[float, ...], tuple[float, ...]]]:
+        """Distance from the middle of the piece that holds `T`, and its coefficients."""
         slope, offset = self._scale
         x = min(1.0, max(-1.0, slope * math.sqrt(1.0 - T / self.T_critical) - offset))
         n = min(PIECES - 1, int((x + 1.0) * (PIECES / 2)))
-        piece = self._pieces.get(n)
+        found, visited = self._pieces
+        piece = visited[n]
         if piece is None:
-            piece = self._pieces[n] = _piece(self.coefficients, n)
-        x -= (2 * n + 1) / PIECES - 1.0
-        (a0, a1, a2, a3, a4, a5, a6, a7), (b0, b1, b2, b3, b4, b5, b6, b7) = piece[0], piece[1]
-        (c0, c1, c2, c3, c4, c5, c6, c7), (d0, d1, d2, d3, d4, d5, d6, d7) = piece[2], piece[3]
+            row = found[n].tolist()
+            piece = visited[n] = tuple(row[: DEGREE + 1]), tuple(row[DEGREE + 1 :])
+        return x - ((2 * n + 1) / PIECES - 1.0), piece
+
+    def ln_p(self, T: float) -> float:
+        """ln p (Pa) at `T` (K), which the caller has checked to lie on the line."""
+        x, ((a0, a1, a2, a3, a4), _) = self._at(T)
+        return a0 + x * (a1 + x * (a2 + x * (a3 + x * a4)))
+
+    def row(self, T: float) -> tuple[float, float, float, float]:
+        """(ln p, h, s, ln density) at `T` (K), which the caller has checked to lie on the line."""
+        x, ((a0, a1, a2, a3, a4), (b0, b1, b2, b3, b4, c0, c1, c2, c3, c4, d0, d1, d2, d3, d4)) = self._at(T)
         return (
-            a0 + x * (a1 + x * (a2 + x * (a3 + x * (a4 + x * (a5 + x * (a6 + x * a7)))))),
-            b0 + x * (b1 + x * (b2 + x * (b3 + x * (b4 + x * (b5 + x * (b6 + x * b7)))))),
-            c0 + x * (c1 + x * (c2 + x * (c3 + x * (c4 + x * (c5 + x * (c6 + x * c7)))))),
-            d0 + x * (d1 + x * (d2 + x * (d3 + x * (d4 + x * (d5 + x * (d6 + x * d7)))))),
+            a0 + x * (a1 + x * (a2 + x * (a3 + x * a4))),
+            b0 + x * (b1 + x * (b2 + x * (b3 + x * b4))),
+            c0 + x * (c1 + x * (c2 + x * (c3 + x * c4))),
+            d0 + x * (d1 + x * (d2 + x * (d3 + x * d4))),
         )
 
     def slopes(self, T: float) -> tuple[float, float, float, float]:
@@ -147,19 +159,17 @@ class Chebyshev1:
     coefficients: Array
 
     @cached_property
-    def _pieces(self) -> _Pieces:
-        return {}
+    def _pieces(self) -> list[tuple[float, ...]]:
+        found = _to_pieces(len(self.coefficients)) @ self.coefficients
+        return [tuple(piece) for piece in found.tolist()]
 
     def __call__(self, ln_p: float) -> float:
         x = (2.0 * math.sqrt(max(self.pivot - ln_p, 0.0)) - self.hi - self.lo) / (self.hi - self.lo)
         x = min(1.0, max(-1.0, x))
         n = min(PIECES - 1, int((x + 1.0) * (PIECES / 2)))
-        piece = self._pieces.get(n)
-        if piece is None:
-            piece = self._pieces[n] = _piece(self.coefficients, n)
         x -= (2 * n + 1) / PIECES - 1.0
-        ((a0, a1, a2, a3, a4, a5, a6, a7),) = piece
-        return a0 + x * (a1 + x * (a2 + x * (a3 + x * (a4 + x * (a5 + x * (a6 + x * a7))))))
+        a0, a1, a2, a3, a4 = self._pieces[n]
+        return a0 + x * (a1 + x * (a2 + x * (a3 + x * a4)))
 
 
 TABLES = ("temperature", "quality", "volume", "entropy")

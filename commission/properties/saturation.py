@@ -63,7 +63,7 @@ class Saturation:
             PropertyRangeError: `T` outside `T_low`..`T_high`.
         """
         self._need_temperature(T)
-        return math.exp(self._dew.row(T)[0])
+        return math.exp(self._dew.ln_p(T))
 
     def dew_temperature(self, p: float) -> float:
         """Temperature (K) of the dew line at `p` (Pa absolute).
@@ -122,7 +122,7 @@ class Saturation:
         """
         if not self.T_high < T:
             return self.bubble(T).p
-        end, slope = self._bubble.row(self.T_high)[0], self._bubble.slopes(self.T_high)[0]
+        end, slope = self._bubble.ln_p(self.T_high), self._bubble.slopes(self.T_high)[0]
         return math.exp(end + slope * self.T_high * (1 - self.T_high / T))
 
     def _saturation(self, line: Line, T: float) -> SaturationState:
