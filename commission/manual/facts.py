@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pydantic import BaseModel
 from pydantic.fields import FieldInfo
 
-from commission.description import Conditions, LoadedPlant
+from commission.description import LoadedPlant
 from commission.description.shapes import meaning_of
 from commission.manual.page_display import three_figures
 from commission.quantities import NOMENCLATURE, Display, Kind, Pressure, pretty
@@ -108,7 +108,7 @@ def stated_number(display: Display, value: float, kind: Kind) -> str:
     return f"{display.number(value, kind, digits)} {pretty(unit)}".strip()
 
 
-class _Walker:
+class Walker:
     """Walks the stated parts of one system and collects facts; what is not stated adds nothing."""
 
     def __init__(self, loaded: LoadedPlant, display: Display, identity: str) -> None:
@@ -167,7 +167,7 @@ class _Walker:
 def system_facts(loaded: LoadedPlant, identity: str, display: Display) -> tuple[FactGroup, ...]:
     """Everything the description states of one system, in groups."""
     system = loaded.system(identity)
-    walker = _Walker(loaded, display, identity)
+    walker = Walker(loaded, display, identity)
     first: list[Fact] = []
     groups: list[FactGroup] = []
     for name, info in type(system).model_fields.items():
@@ -181,71 +181,3 @@ def system_facts(loaded: LoadedPlant, identity: str, display: Display) -> tuple[
         else:
             first.extend(walker.value(value, info, (name,), words_of(name)))
     return (FactGroup("Duty and refrigerant", tuple(first)), *groups)
-
-
-def conditions_text(conditions: BaseModel, display: Display) -> str:
-    """The stated conditions in one line."""
-    keys = [k for k in Conditions.model_fields if getattr(conditions, k, None) is not None]
-    return ", ".join(f"{NOMENCLATURE[k].label.lower()} {display.of(k, getattr(conditions, k))}" for k in keys)
-
-
-@dataclass(frozen=True, slots=True)
-class Stated:
-    """One thing that the supplier or the contract states: at which condition, what, where it is written."""
-
-    at: str
-    values: tuple[tuple[str, str], ...]
-    includes: str
-    place: str
-
-
-def _stated(walker: _Walker, point: BaseModel, at: tuple[str, ...], path: tuple[str | int, ...], words: str) -> Stated:
-    """A rated point: the conditions in `at`, everything else it states as values."""
-    fields = type(point).model_fields
-    known = [k for k in fields if getattr(point, k) is not None and k not in ("includes", "source")]
-    conditions = ", ".join(
-        f"{words_of(k).lower()} {walker.text(getattr(point, k), fields[k], k)}" for k in known if k in at
-    )
-    values = tuple((words_of(k), walker.text(getattr(point, k), fields[k], k)) for k in known if k not in at)
-    includes = ", ".join(getattr(point, "includes", None) or ())
-    return Stated(f"{words}{conditions}", values, includes, str(walker.loaded.where((*walker.base, *path))))
-
-
-def rated_points(loaded: LoadedPlant, identity: str, display: Display) -> tuple[Stated, ...]:
-    """What the supplier states, of the whole system and of the condensing unit."""
-    system = loaded.system(identity)
-    walker = _Walker(loaded, display, identity)
-    conditions = tuple(Conditions.model_fields)
-    found = [_stated(walker, p, conditions, ("rated_points", n), "") for n, p in enumerate(system.rated_points)]
-    unit = system.condensing_unit
-    if unit is not None:
-        included = ", ".join(unit.includes or ())
-        for n, point in enumerate(unit.rated_points):
-            one = _stated(walker, point, ("evaporating_temperature", "heat_sink_inlet_temperature"),
-                          ("condensing_unit", "rated_points", n), "condensing unit alone: ")  # fmt: skip
-            found.append(Stated(one.at, one.values, included, one.place))
-    return tuple(found)
-
-
-def guarantees(loaded: LoadedPlant, identity: str, display: Display) -> tuple[Stated, ...]:
-    """What the contract promises."""
-    found = []
-    for n, g in enumerate(loaded.system(identity).guarantee):
-        tolerance = ", ".join(
-            f"{stated_number(display, v, Kind.RATIO)} {word}"
-            for v, word in ((g.tolerance.below, "below"), (g.tolerance.above, "above"))
-            if v is not None
-        )
-        values = [
-            (NOMENCLATURE[g.quantity].label, display.text(g.value_si, NOMENCLATURE[g.quantity].kind)),
-            ("Tolerance", tolerance or "none stated"),
-            ("Decision", f"{g.decision} acceptance"),
-            ("Carried to the day by", g.carried_by),
-        ]
-        if g.route:
-            values.append(("Measured by", g.route))
-        if g.source:
-            values.append(("Clause", g.source))
-        place = str(loaded.where(("systems", identity, "guarantee", n)))
-        found.append(Stated(conditions_text(g.at, display), tuple(values), ", ".join(g.includes or ()), place))
-    return tuple(found)

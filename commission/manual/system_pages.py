@@ -10,7 +10,7 @@ from typing import Any
 from commission.manual.assumed import ShownAssumption, shown_assumptions
 from commission.manual.book import Sheet
 from commission.manual.documents import DocumentLink
-from commission.manual.facts import guarantees, rated_points, stated_number, system_facts
+from commission.manual.facts import stated_number, system_facts
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
 from commission.manual.heating_up import heating_ups
@@ -26,6 +26,7 @@ from commission.manual.showing import (
     show_how,
     unit_of,
 )
+from commission.manual.stated import promises, rated_tables
 from commission.manual.upkeep_pages import NextDuty
 from commission.quantities import NOMENCLATURE, Display, Kind
 
@@ -49,8 +50,8 @@ def what_it_is(
             "filed": filed,
             "upkeep": upkeep,
             "groups": system_facts(plant.loaded, data.id, plant.display),
-            "rated": rated_points(plant.loaded, data.id, plant.display),
-            "promised": guarantees(plant.loaded, data.id, plant.display),
+            "rated": rated_tables(plant.loaded, data.id, plant.display),
+            "promised": promises(plant.loaded, data.id, plant.display),
             "documents": documents,
             "assumptions_page": data.page("assumptions"),
         },
