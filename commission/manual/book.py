@@ -15,7 +15,8 @@ class Sheet:
     """One generated page.
 
     `id` is its path without `.html`; `group` is `plant`, `reference`, `owner` or `system:ID`; `template` stands in
-    `site_templates/pages/`; `context` is what the template may use; `kicker` is the line above the title.
+    `site_templates/pages/`; `context` is what the template may use; `kicker` is the line above the title; `scripts` are
+    files of `site_templates/scripts/` that this page needs, in their order.
     """
 
     id: str
@@ -27,6 +28,7 @@ class Sheet:
     short: str = ""
     listed: bool = True
     paper: bool = False
+    scripts: tuple[str, ...] = ()
 
     @property
     def label(self) -> str:

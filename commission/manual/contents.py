@@ -14,6 +14,7 @@ from commission.manual.day_sheet import day_sheet
 from commission.manual.documents import address, copied_files, document_links, owner_pages
 from commission.manual.findings import findings_page
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.live_sheet import live_sheet
 from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
 from commission.manual.records_pages import (
@@ -146,6 +147,8 @@ def _system(
     book.add(before_the_visit(plant, data))
     for sheet in test_sheets(plant, data):
         book.add(sheet)
+    progress(f"tabulating {data.id}")
+    book.add(live_sheet(plant, data))
     book.add(day_sheet(plant, data))
     book.add(records_page(plant, data, archive, found, past))
     for record in archive.of(data.id):

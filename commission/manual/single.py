@@ -1,4 +1,4 @@
-"""Day sheet and checklist of each system once more as one file each, for tablets that open single files only.
+"""Day sheets and checklist of each system once more as one file each, for tablets that open single files only.
 
 Style and script stand inside the file, allowed by their hashes alone; links to other pages become plain words.
 """
@@ -18,7 +18,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.paper import paper_style
 from commission.manual.rendering import render_body
 
-KINDS = (("day-sheet", "Day sheet"), ("checklist", "Checklist"))
+KINDS = (("live-sheet", "Live day sheet"), ("day-sheet", "Day sheet for pencil"), ("checklist", "Checklist"))
 """The pages that exist as single files too."""
 
 _AWAY = re.compile(r'<a (?:class="[^"]*" )?href="(?!#)[^"]*"[^>]*>(.*?)</a>', re.DOTALL)
@@ -60,7 +60,8 @@ def one_file(book: Book, env: jinja2.Environment, templates: Path, plant: PlantD
     paper = paper_style(plant.name, plant.loaded.digest).decode("utf-8")
     look = (templates / "style" / "manual.css").read_text(encoding="utf-8")
     style = f"\n{look}\n@media print {{\n{paper}\n}}\n"
-    script = "\n" + (templates / "scripts" / "page.js").read_text(encoding="utf-8") + "\n"
+    names = ("page.js", *sheet.scripts)
+    script = "\n" + "\n".join((templates / "scripts" / n).read_text(encoding="utf-8") for n in names) + "\n"
     text = env.get_template("single.html").render(
         sheet=sheet,
         plant_name=plant.name,

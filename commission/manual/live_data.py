@@ -1,0 +1,231 @@
+"""What the page of a live day sheet carries: numbers in SI with their units of display, ready for its script."""
+
+from __future__ import annotations
+
+import json
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+from markupsafe import Markup
+
+from commission.description.model import Medium
+from commission.errors import NotCalculatedError
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.live_bands import TWO_SIDED, Bands, make_bands
+from commission.manual.live_plan import ALSO_NEEDED, DERIVED, LivePlan
+from commission.manual.live_series import Asked, LiveTable, along_the_way, grid_axes, make_table
+from commission.manual.showing import label_of, unit_of
+from commission.quantities import NOMENCLATURE, Display, Kind, Reference
+from commission.quantities.units import find_unit
+
+if TYPE_CHECKING:
+    from commission.prediction import SystemModel
+    from commission.properties import Refrigerant
+
+SATURATION_ROWS = 96
+"""Rows of the saturation lines, even in the logarithm of pressure: read between them within 0.02 K."""
+NEAR_CRITICAL = 0.98
+"""Share of the critical pressure up to which a saturation temperature is told, as `acceptance` does."""
+DIGITS = 1e-7
+"""Steps in which the factors of a series are written, as a share of the largest of its row."""
+_LIQUID_STEP = 5.0
+_REGIME_SIGNS = "0123456789abcdefghijklmnopqrstuvwxyz"
+
+
+@dataclass(frozen=True, slots=True)
+class Calculated:
+    """The table and the bands of one system."""
+
+    table: LiveTable
+    bands: Bands
+
+
+def calculate(plant: PlantData, model: SystemModel, plan: LivePlan) -> Calculated:
+    """Expected values and bands over the conditions of the plan.
+
+    Raises:
+        NotCalculatedError: nothing can be expected anywhere in the range; the message says why.
+    """
+    axes = grid_axes(plan.axes)
+    rated = {k: r for k, (_, r, _) in plan.extras.items()}
+    ask = Asked(model, plan.conditions)
+    way = along_the_way(list(axes.values()))
+    answers = ask([(*p, *rated.values()) for p in way])
+    found = {p: answers[(*p, *rated.values())] for p in way}
+    if not any(found.values()):
+        raise NotCalculatedError("nowhere in the range of the conditions is there a balance")
+    bands = make_bands(plant.loaded, model, axes, found, rated, plan.readings, plan.instruments, _counted(plan))
+    known = {k for one in found.values() if one is not None for k in one.values}
+    keys = [k for k in dict.fromkeys((*bands.judged, *ALSO_NEEDED, *DERIVED)) if k in known]
+    return Calculated(make_table(ask, axes, plan.extras, found, keys, bands.shown), bands)
+
+
+def _counted(plan: LivePlan) -> tuple[str, ...]:
+    """What is judged: everything read and worked out but what the conditions alone determine."""
+    settled = {
+        f"heat_{side}_temperature_change"
+        for side in ("source", "sink")
+        if {f"heat_{side}_inlet_temperature", f"heat_{side}_outlet_temperature"} <= set(plan.conditions)
+    }
+    return tuple(k for k in dict.fromkeys((*plan.readings, *DERIVED)) if k not in settled)
+
+
+def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calculated | None) -> dict[str, Any]:
+    """All that the script needs, as plain data."""
+    from commission.records import records_folder
+
+    instruments = plant.loaded.plant.instruments
+    derived = [k for k in DERIVED if k not in plan.readings and (found is None or k in found.bands.judged)]
+    keys = [*plan.conditions, *plan.readings, *DERIVED, "barometric_pressure"]
+    sheets = sorted(p.relative_to(records_folder(plant.loaded)).as_posix() for p in sheets_of(plant, data))
+    return {
+        "plant": plant.name,
+        "system": data.id,
+        "digest": plant.loaded.digest[:12],
+        "barometer": plant.loaded.barometric_pressure,
+        "twoSided": TWO_SIDED,
+        "quantities": {k: {"label": label_of(k), "kind": NOMENCLATURE[k].kind.value} for k in dict.fromkeys(keys)},
+        "kinds": {k.value: kind_data(plant.display, k) for k in {NOMENCLATURE[k].kind for k in keys}},
+        "conditions": list(plan.conditions),
+        "readings": list(plan.readings),
+        "derived": derived,
+        "instruments": {k: v for k, v in plan.instruments.items() if v},
+        "until": {n: i.calibrated_until.isoformat() for n, i in instruments.items() if i.calibrated_until},
+        "sheets": sheets,
+        "steady": _steady(data),
+        "liquid": {side: _liquid(data, side) for side in ("source", "sink")},
+        "saturation": saturation_rows(data.model.refrigerant) if data.model is not None else None,
+        "expected": None if found is None else _table(found),
+    }
+
+
+def as_script(data: Mapping[str, Any]) -> Markup:
+    """The data as JSON that can stand inside a page: no sign in it can end the element that holds it."""
+    text = json.dumps(data, ensure_ascii=False, separators=(",", ":"), allow_nan=False)
+    for sign in "<>&\u2028\u2029":
+        text = text.replace(sign, f"\\u{ord(sign):04x}")
+    return Markup(text)
+
+
+def sheets_of(plant: PlantData, data: SystemData) -> list[Any]:
+    """The files of the frozen test sheets of a system."""
+    from commission.acceptance import SheetError, read_sheet
+    from commission.records import records_folder
+
+    found = []
+    for path in sorted((records_folder(plant.loaded) / "sheets").glob("*.yaml")):
+        try:
+            sheet = read_sheet(path)
+        except SheetError:
+            continue  # the review names it; nobody can be judged by it
+        if sheet.system == data.id:
+            found.append(path)
+    return found
+
+
+def kind_data(display: Display, kind: Kind) -> dict[str, Any]:
+    """How a kind is typed and shown: SI = shown x factor + offset, a gauge counts from the barometer."""
+    name, digits = display.unit_and_digits(kind)
+    unit = find_unit(name, kind) if name else None
+    return {
+        "unit": name,
+        "shown": unit_of(display, kind),
+        "spread": display.spread_unit(kind) if name else "",
+        "factor": unit.factor if unit else 1.0,
+        "offset": unit.offset if unit else 0.0,
+        "gauge": bool(unit and unit.reference is Reference.GAUGE),
+        "digits": digits,
+        "figures": kind is Kind.VOLUME_FLOW,
+    }
+
+
+def saturation_rows(refrigerant: Refrigerant) -> dict[str, Any]:
+    """Dew and bubble temperatures (K) over the logarithm of pressure, from the coldest that is known."""
+    low = max(refrigerant.T_triple + 1.0, 193.15)
+    first = math.log(max(refrigerant.dew(low).p, refrigerant.bubble(low).p))
+    last = math.log(NEAR_CRITICAL * refrigerant.p_critical)
+    step = (last - first) / (SATURATION_ROWS - 1)
+    pressures = [math.exp(first + n * step) for n in range(SATURATION_ROWS)]
+    rows: dict[str, list[float]] = {"dew": [], "bubble": []}
+    for pressure in pressures:
+        try:
+            dew, bubble = refrigerant.dew_temperature(pressure), refrigerant.bubble_temperature(pressure)
+        except NotCalculatedError:
+            break
+        rows["dew"].append(round(dew, 4))
+        rows["bubble"].append(round(bubble, 4))
+    return {"first": first, "step": step, **rows}
+
+
+def _liquid(data: SystemData, side: str) -> dict[str, Any] | None:
+    """Density and specific heat of a liquid over temperature; None for air or where the mass fraction is not stated."""
+    from commission.properties import liquid
+
+    medium: Medium = data.system.heat_source if side == "source" else data.system.heat_sink
+    if medium.medium == "air" or (medium.medium != "water" and medium.mass_fraction is None):
+        return None
+    fluid = liquid(medium.medium, medium.mass_fraction or 0.0)
+    low = math.ceil(fluid.freezing_temperature) + 1.0
+    count = int((min(fluid.highest_temperature, 373.15) - low) // _LIQUID_STEP)
+    at = [low + n * _LIQUID_STEP for n in range(count + 1)]
+    return {
+        "first": low,
+        "step": _LIQUID_STEP,
+        "density": [round(fluid.density(t), 3) for t in at],
+        "heat": [round(fluid.specific_heat(t), 2) for t in at],
+    }
+
+
+def _steady(data: SystemData) -> dict[str, float]:
+    """Least times in s since the start and, where the plant defrosts, since the last defrost: the limits of records."""
+    from commission.acceptance import steadiness
+
+    checks = steadiness((), None, None, defrosts=data.system.evaporator.defrost is not None)
+    return {s.key: s.limit for s in checks if s.key in ("since_start", "since_defrost")}
+
+
+def _table(found: Calculated) -> dict[str, Any]:
+    table, bands, extras = found.table, found.bands, found.table.extras.items()
+    return {
+        "axes": [{"key": k, "points": [_short(x) for x in a]} for k, a in table.axes.items()],
+        "extras": [{"key": k, "low": low, "rated": rated, "high": high} for k, (low, rated, high) in extras],
+        "names": table.names,
+        "regimes": "".join("-" if n < 0 else _REGIME_SIGNS[n] for n in table.regimes),
+        "series": [_series(table, name) for name in table.names],
+        "bands": [
+            {k: [[_short(f) for f in factors], _short(error)] for k, (factors, error) in bands.logs.get(n, {}).items()}
+            for n in table.names
+        ],
+        "unknown": {
+            key: [{k: _short(v) for k, v in by_regime.get(n, {}).items()} for n in table.names]
+            for key, by_regime in bands.unknown.items()
+        },
+    }
+
+
+def _series(table: LiveTable, name: str) -> dict[str, Any] | None:
+    series = table.series.get(name)
+    if series is None:
+        return None
+    return {
+        "centres": [_short(x) for x in series.centres],
+        "halves": [_short(x) for x in series.halves],
+        "terms": series.terms,
+        "rows": {k: _row(row) for k, row in series.rows.items()},
+        "logs": sorted(series.logs),
+        "errors": {k: round(e, 3) for k, e in series.errors.items() if e > 0.0005},
+    }
+
+
+def _row(row: Sequence[float]) -> list[float]:
+    largest = max(map(abs, row))
+    digits = -math.floor(math.log10(largest * DIGITS)) if largest else 0
+    rounded = [round(x, digits) for x in row]
+    return [int(x) if x == int(x) else x for x in rounded]
+
+
+def _short(x: float) -> float:
+    """Nine figures: more than any reading holds."""
+    return float(f"{x:.9g}")

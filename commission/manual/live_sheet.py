@@ -1,0 +1,100 @@
+"""The live day sheet: a person types what stands on the instruments and sees what should stand there on such a day."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+from commission.errors import NotCalculatedError
+from commission.manual.book import Sheet
+from commission.manual.facts import stated_number
+from commission.manual.gather import PlantData, SystemData
+from commission.manual.live_data import Calculated, as_script, calculate, live_data
+from commission.manual.live_plan import HOW, LivePlan, bare_plan, make_plan
+from commission.manual.showing import label_of, unit_of
+from commission.quantities import NOMENCLATURE
+
+SCRIPTS = ("decision.js", "decision_vectors.js", "live_table.js", "live_export.js", "live_sheet.js")
+TITLE = "Live day sheet"
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """One line to fill in or to be worked out."""
+
+    key: str
+    label: str
+    unit: str
+    how: str = ""
+    instruments: tuple[str, ...] = ()
+    chosen: str = ""
+    rated: str = ""
+    optional: bool = False
+
+
+def live_sheet(plant: PlantData, data: SystemData) -> Sheet:
+    """The page of one system. Without a calculation it still takes readings and gives the record."""
+    found: Calculated | None = None
+    because = data.because
+    if data.model is not None and data.rated is not None:
+        plan = make_plan(plant.loaded, data.model, data.rated)
+        try:
+            found = calculate(plant, data.model, plan)
+        except NotCalculatedError as error:
+            because = str(error)
+    else:
+        plan = bare_plan(plant.loaded, data.system)
+    content = live_data(plant, data, plan, found)
+    context: dict[str, Any] = {
+        "because": because,
+        "system_name": data.name,
+        "system_id": data.id,
+        "digest": plant.loaded.digest[:12],
+        "plant_name": plant.name,
+        "conditions": [_row(plant, data, plan, k) for k in plan.conditions],
+        "readings": [_row(plant, data, plan, k) for k in plan.readings],
+        "derived": [_row(plant, data, plan, k) for k in content["derived"]],
+        "held": [(label_of(k), plant.display.of(k, v)) for k, v in plan.held.items()],
+        "when_filed": _when_filed(data, plan, content["derived"]),
+        "ranges": [
+            (label_of(k), plant.display.of(k, low), plant.display.of(k, high))
+            for k, (low, _, high) in {**plan.axes, **plan.extras}.items()
+        ],
+        "stages": _stages(plant, data),
+        "sheets": content["sheets"],
+        "data": as_script(content),
+        "paper_sheet": data.page("day-sheet"),
+    }
+    return Sheet(data.page("live-sheet"), TITLE, data.group, "live_sheet.html", context, data.kicker, scripts=SCRIPTS)
+
+
+def _row(plant: PlantData, data: SystemData, plan: LivePlan, key: str) -> Row:
+    kind = NOMENCLATURE[key].kind
+    fit = tuple(n for n, i in plant.loaded.plant.instruments.items() if i.resolved.kind is kind)
+    rated = data.rated.conditions.get(key) if data.rated else None
+    return Row(
+        key,
+        label_of(key),
+        unit_of(plant.display, kind),
+        HOW.get(key, ""),
+        fit if key in (*plan.conditions, *plan.readings) else (),
+        plan.instruments.get(key) or "",
+        "" if rated is None else stated_number(plant.display, rated, kind),
+        key in plan.conditions and not key.endswith("_temperature"),
+    )
+
+
+def _when_filed(data: SystemData, plan: LivePlan, derived: list[str]) -> list[str]:
+    """What is judged only when the record is filed, since the page cannot work it out."""
+    expected = data.rated.expected if data.rated else {}
+    capacities = ("cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop")
+    return [label_of(k) for k in capacities if k in expected and k not in derived and k not in plan.readings]
+
+
+def _stages(plant: PlantData, data: SystemData) -> list[tuple[str, str, bool]]:
+    """Id and title of each stage of the checklist, and whether it is the one that is offered first."""
+    from commission.checklists import stages
+
+    known = [(s.id, s.title) for s in stages(plant.loaded, data.id)]
+    first = next((i for i, _ in known if i == "performance"), known[0][0] if known else "")
+    return [(i, title, i == first) for i, title in known]
