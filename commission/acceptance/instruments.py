@@ -86,6 +86,10 @@ def library() -> Mapping[str, Any]:
     return data
 
 
+COUNTED = ("running_share", "starts_per_hour", "defrost_time")
+"""What is counted or timed over a log or by the clock: no instrument has an error in it that would be worth a word."""
+
+
 def instrument_class(name: str, measures: str) -> Mapping[str, Any]:
     """The entry of a class such as `IEC 60751 A`; spaces and letter case do not count.
 
@@ -186,11 +190,16 @@ def assumed_budget(
 ) -> Budget:
     """Uncertainty of a reading whose instrument is not stated: what is usual, shown as assumed, with a warning.
 
+    What was counted or timed (`COUNTED`) has no instrument and an empty budget.
+
     Raises:
         NotCalculatedError: nothing usual is known for this kind of quantity.
     """
     kind = NOMENCLATURE[key].kind
-    entry = library()["not_stated"].get(_WORD_OF_KIND.get(kind))
+    if key in COUNTED:
+        return Budget()
+    usual = kind is not Kind.RATIO or key.endswith("relative_humidity")
+    entry = library()["not_stated"].get(_WORD_OF_KIND.get(kind)) if usual else None
     label = NOMENCLATURE[key].label.lower()
     if entry is None:
         raise NotCalculatedError(

@@ -73,12 +73,20 @@ def sentence(record: Record, judgement: Judgement | None, reason: str | None, di
     """The verdict in words, with the figures it rests on."""
     if judgement is None:
         return f"no verdict: {reason}"
+    if record.mode == "trim" and not judgement.deviations:
+        return f"trim, no verdict, and nothing to compare: {_why_nothing(judgement)}"
     if record.mode == "trim":
         count = sum(d.significant for d in judgement.deviations)
         return f"trim, no verdict: {count} of {len(judgement.deviations)} readings deviate significantly"
     if not judgement.guarantees:
         return "no verdict: the contract guarantees nothing for this system"
     return "; ".join(guarantee_sentence(g, display) for g in judgement.guarantees)
+
+
+def _why_nothing(judgement: Judgement) -> str:
+    """The reason that most readings share for having no expectation."""
+    reasons = list(judgement.not_judged.values())
+    return max(reasons, key=reasons.count, default="nothing was read of which anything is expected")
 
 
 def guarantee_sentence(verdict: GuaranteeVerdict, display: Display) -> str:

@@ -195,6 +195,15 @@ def test_instrument_not_stated_is_assumed_and_said() -> None:
     assert "not stated well enough (p: neither accuracy nor class" in incomplete.budget.warnings[0]
     with pytest.raises(NotCalculatedError, match="nothing usual is known"):
         assumed_budget("cooling_cop", 3.0, AIR)
+    with pytest.raises(NotCalculatedError, match="nothing usual is known for a ratio"):
+        assumed_budget("current_unbalance", 0.02, AIR)
+
+
+def test_what_was_counted_needs_no_instrument() -> None:
+    """Starts, running share and defrost time come off a log or a clock: no error of an instrument is made up."""
+    for key, value in (("running_share", 0.62), ("starts_per_hour", 3.0), ("defrost_time", 900.0)):
+        found = measure(Reading(key, value), {}, AIR)
+        assert (found.budget.components, found.budget.warnings) == ((), ())
 
 
 def test_every_entry_of_the_library_has_source_and_mark() -> None:

@@ -158,3 +158,12 @@ def test_a_trim_accepts_nothing(loaded: LoadedPlant, write: Write) -> None:
     with pytest.raises(RecordError, match="a trim is not") as caught:
         file_record(loaded, write(text=ACCEPTED.replace("mode: test", "mode: trim")))
     assert caught.value.problems[0].path == "reservations"
+
+
+def test_a_trim_with_nothing_to_compare_says_why(loaded: LoadedPlant, write: Write) -> None:
+    """Readings without the temperature of a medium: the sentence names what was not read, and counts nothing."""
+    path = write(
+        ("  heat_source_inlet_temperature: {value: 2.4 °C, instrument: air probe, where: air on the cooler}\n", ""),
+    )
+    said = read_filed(file_record(loaded, path)).filed.sentence
+    assert said.startswith("trim, no verdict, and nothing to compare: heat source inlet temperature was not read")
