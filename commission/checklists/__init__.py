@@ -3,5 +3,6 @@
 from commission.checklists.library import ChecklistError
 from commission.checklists.rendering import Target
 from commission.checklists.stages import Item, Stage, stages
+from commission.checklists.together import target_with
 
-__all__ = ["ChecklistError", "Item", "Stage", "Target", "stages"]
+__all__ = ["ChecklistError", "Item", "Stage", "Target", "stages", "target_with"]

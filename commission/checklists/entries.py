@@ -25,6 +25,12 @@ class MustRead(Entry):
     )
     at_least: str | None = Field(None, description="lower bound, an expression or quantity")
     at_most: str | None = Field(None, description="upper bound, an expression or quantity")
+    rest_at: str | None = Field(
+        None, description="id of the item that reads the temperature of the plant at rest: saturation at its answer"
+    )
+    as_answered: str | None = Field(
+        None, description="id of the item whose answer it must equal, within the error of the instrument"
+    )
     says: str | None = Field(None, description="words beside the figures, or alone")
 
 

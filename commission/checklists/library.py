@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import re
-import string
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from functools import cache
@@ -13,6 +12,7 @@ from pathlib import Path
 from commission.checklists.entries import ItemEntry, StageEntry
 from commission.checklists.language import Expression, ExpressionError, read_expression
 from commission.checklists.names import names
+from commission.checklists.templates import CONDITION_WANTED, Template, problem_at, read_template
 from commission.description import Positions, read_yaml, validate
 from commission.errors import InputError, Problem, nearest
 from commission.quantities import NOMENCLATURE, Kind, find_unit
@@ -24,13 +24,6 @@ TEXT_FIELDS = ("do", "how", "if_not", "hazard", "caution", "source", "who")
 
 class ChecklistError(InputError):
     """A checklist file cannot be used; holds every problem found, with file, line and column."""
-
-
-@dataclass(frozen=True, slots=True)
-class Template:
-    """A text with its expressions, in turn; an inner template is left out where one of its values is not known."""
-
-    parts: tuple[str | Expression | Template, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -100,7 +93,7 @@ def merge(base: Sequence[CheckedStage], sources: Iterable[tuple[str, Path | str]
         pending.append((entry, read.positions))
     for entry, positions in pending:
         problems += _add(stages, entry, positions)
-    problems += _moves(stages)
+    problems += _moves(stages) + _named(stages)
     if problems:
         raise ChecklistError(*problems)
     return tuple(stages)
@@ -125,7 +118,7 @@ def _add(stages: list[CheckedStage], entry: StageEntry, positions: Positions) ->
     stage = stages[at]
     title, purpose = entry.title or stage.title, stage.purpose
     if entry.purpose is not None:
-        purpose, found = _template(entry.purpose, positions, ("purpose",))
+        purpose, found = read_template(entry.purpose, positions, ("purpose",))
         problems += found
     items = list(stage.items)
     for i, item in enumerate(entry.items):
@@ -217,6 +210,22 @@ def _moves(stages: Sequence[CheckedStage]) -> list[Problem]:
     return problems
 
 
+def _named(stages: Sequence[CheckedStage]) -> list[Problem]:
+    """Every item whose answer decides another exists, and is answered with a value."""
+    values = [x.entry.id for s in stages for x in s.items if x.entry.answer == "value"]
+    problems = []
+    for item in (item for stage in stages for item in stage.items):
+        must = item.entry.must_read
+        for name in (must.rest_at, must.as_answered) if must is not None else ():
+            if name is not None and name not in values:
+                file, _, line = item.origin.partition(":")
+                message = "no item that is answered with a value has this id"
+                row = int(line) if line.isdigit() else None
+                near = nearest(name, values)
+                problems.append(Problem(message, file, row, path=item.entry.id, value=name, nearest=near))
+    return problems
+
+
 def _unknown(positions: Positions, path: tuple[str | int, ...], word: str, known: Sequence[str], what: str) -> Problem:
     return positions.problem(
         path, f"no {what} has this id", allowed=", ".join(known) or None, nearest=nearest(word, known)
@@ -235,12 +244,10 @@ def check_item(
         try:
             found = read_expression(text, names())
         except ExpressionError as error:
-            problems.append(_at(error, positions, (*path, *where)))
+            problems.append(problem_at(error, positions, (*path, *where)))
             return None
         if truth and found.type != "yes/no":
-            problems.append(
-                positions.problem((*path, *where), "a condition is wanted here, something that is yes or no")
-            )
+            problems.append(positions.problem((*path, *where), CONDITION_WANTED))
         return found
 
     if not IDENTITY.fullmatch(entry.id):
@@ -252,7 +259,7 @@ def check_item(
     for key in TEXT_FIELDS:
         text = getattr(entry, key)
         if text is not None:
-            texts[key], found = _template(text, positions, (*path, key))
+            texts[key], found = read_template(text, positions, (*path, key))
             problems += found
     bounds: dict[str, Expression | str] = {}
     if entry.must_read is not None:
@@ -261,53 +268,6 @@ def check_item(
     problems += _answer(entry, positions, path)
     mark = positions.mark(path).value
     return CheckedItem(entry, when, move, texts, bounds, f"{mark.file}:{mark.line}"), problems
-
-
-def _at(error: ExpressionError, positions: Positions, path: tuple[str | int, ...]) -> Problem:
-    problem = error.problems[0]
-    return positions.problem(
-        path, problem.message, allowed=problem.allowed, nearest=problem.nearest, value=problem.value
-    )
-
-
-def _template(text: str, positions: Positions, path: tuple[str | int, ...]) -> tuple[Template, list[Problem]]:
-    """A text whose parts in braces are expressions, and whose parts in double square brackets can be left out."""
-    if text.count("[[") != text.count("]]"):
-        return Template((text,)), [positions.problem(path, "double square brackets are not closed")]
-    parts: list[str | Expression | Template] = []
-    problems: list[Problem] = []
-    for index, piece in enumerate(re.split(r"\[\[|\]\]", text)):
-        inner, found = _pieces(piece, positions, path)
-        problems += found
-        parts += [Template(tuple(inner))] if index % 2 else inner
-    return Template(tuple(parts)), problems
-
-
-def _pieces(
-    text: str, positions: Positions, path: tuple[str | int, ...]
-) -> tuple[list[str | Expression | Template], list[Problem]]:
-    """Literal text and expressions of a text without optional parts."""
-    parts: list[str | Expression | Template] = []
-    problems: list[Problem] = []
-    try:
-        pieces = list(string.Formatter().parse(text))
-    except ValueError:
-        return [text], [positions.problem(path, "a brace is not closed; write {{ for a brace itself")]
-    for literal, inner, form, conversion in pieces:
-        if literal:
-            parts.append(literal)
-        if inner is None:
-            continue
-        if form or conversion:
-            problems.append(
-                positions.problem(path, f"{{{inner}}} takes no format", allowed="a name or expression alone")
-            )
-            continue
-        try:
-            parts.append(read_expression(inner, names()))
-        except ExpressionError as error:
-            problems.append(_at(error, positions, path))
-    return parts, problems
 
 
 def _bounds(
@@ -332,7 +292,7 @@ def _bounds(
         try:
             expression = read_expression(text, names())
         except ExpressionError as error:
-            problems.append(_at(error, positions, where))
+            problems.append(problem_at(error, positions, where))
             continue
         if not isinstance(expression.type, Kind):
             problems.append(
@@ -346,7 +306,7 @@ def _bounds(
     if entry.must_read.within is not None:
         found["within"] = entry.must_read.within
     if entry.must_read.says is not None:
-        texts["says"], more = _template(entry.must_read.says, positions, (*path, "must_read", "says"))
+        texts["says"], more = read_template(entry.must_read.says, positions, (*path, "must_read", "says"))
         problems += more
     if wanted is not None:
         kinds.add(wanted)

@@ -11,7 +11,8 @@ from commission.safety import charge_limits, hazards
 from commission.safety.facts import weaker
 
 if TYPE_CHECKING:
-    from commission.checklists.library import CheckedItem, Template
+    from commission.checklists.library import CheckedItem
+    from commission.checklists.templates import Template
     from commission.checklists.words import Facts
 
 FROM_MEMORY = ("M", "M-low")

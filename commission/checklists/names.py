@@ -36,23 +36,31 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "fluid.ammonia": ("yes/no", "R-717", ()),
         "fluid.carbon_dioxide": ("yes/no", "R-744", ()),
         "fluid.blend": ("yes/no", "a blend", ()),
+        "fluid.hydrocarbon": ("yes/no", "made of hydrocarbons alone", ()),
         "fluid.liquid_only": ("yes/no", "charged as liquid only", ()),
         "fluid.lfl": (Kind.DENSITY, "lower flammability limit", ()),
         "fluid.practical_limit": (Kind.DENSITY, "practical limit", ()),
         "fluid.gwp": (Kind.NUMBER, "global warming potential by the law in force", ()),
         "law.leak_checks": ("yes/no", "the refrigerant law asks for leak checks at intervals", ()),
         "law.greenhouse_gas": ("yes/no", "the refrigerant holds a gas listed by EU 2024/573 annex I or II", ()),
+        "law.building_inspection": (
+            "yes/no",
+            "heating or air conditioning of a building, large enough for the inspections of EU 2024/1275",
+            (),
+        ),
         "room.walk_in": ("yes/no", "people walk into the cooled room", ()),
         "room.freezer": ("yes/no", "the cooled room is held below 0 °C", ()),
         "source.liquid": ("yes/no", "heat is taken from a liquid", ()),
         "sink.liquid": ("yes/no", "heat is given to a liquid", ()),
         "source.antifreeze": ("yes/no", "the liquid that heat is taken from holds glycol", ()),
         "sink.antifreeze": ("yes/no", "the liquid that heat is given to holds glycol", ()),
-        "sink.tower": (
-            "yes/no",
-            "whether the heat-sink water goes over a cooling tower",
+        "sink.tower": ("yes/no", "whether the heat-sink water goes over a cooling tower", ()),
+        "source.freezing_point": (
+            Kind.TEMPERATURE,
+            "where the first ice forms in the liquid that heat is taken from",
             (),
         ),
+        "sink.freezing_point": (Kind.TEMPERATURE, "where the first ice forms in the liquid that heat is given to", ()),
         "source.outdoors": ("yes/no", "heat is taken from outdoor air", ()),
         "piped.on_site": ("yes/no", "refrigerant pipes are joined on site: not factory sealed", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),
@@ -61,6 +69,14 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
             "a compressor that turning backwards harms: scroll, screw or rotary, on three phases",
             (),
         ),
+        "relief.described": ("yes/no", "a relief valve is described", ()),
+        "oil.sight_glass": ("yes/no", "a compressor that shows its oil level: semi-hermetic, open, or a screw", ()),
+        "rated.capacity": (Kind.HEAT_FLOW, "largest capacity that is stated", ()),
+        **{
+            f"curve.{which}_{key}": (Kind.TEMPERATURE, f"{says} of the {which} point of the weather curve", ())
+            for which in ("coldest", "middle", "mildest")
+            for key, says in (("outdoor", "outdoor temperature"), ("flow", "flow temperature"))
+        },
         "words.system": ("text", "name of the system", ()),
         "words.evaporator_space": ("text", "name of the space of the evaporator", ()),
         "words.condensing_space": ("text", "name of the space of the condensing unit", ()),
@@ -79,8 +95,10 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.flow_stages": ("text", "air flow of each stage of the fan", ()),
         "words.levels": ("text", "levels in the air that matter to people", ()),
         "words.highest_discharge": ("text", "highest discharge temperature by common practice", ()),
-        "only.flammable": ("text", "nothing, but known only for a flammable refrigerant: keeps [[a sentence]]", ()),
-        "only.hydrocarbon": ("text", "nothing, but known only for a hydrocarbon: keeps [[a sentence]]", ()),
+        "words.reset": ("text", "what the compressor does after its high-pressure limit device has acted", ()),
+        "words.relief_valves": ("text", "set pressure of each relief valve, by where it sits", ()),
+        "words.power_counts": ("text", "what the rated power input counts", ()),
+        "words.rest_pressures": ("text", "pressure of liquid and vapour at rest at a few temperatures", ()),
         "words.records": ("text", "what the refrigerant law wants recorded", ()),
     }
 )

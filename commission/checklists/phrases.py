@@ -1,4 +1,4 @@
-"""Derived facts and ready phrases: what a checklist asks about a system that is not a single key of the description."""
+"""Ready phrases: what a checklist says of a system in words."""
 
 from __future__ import annotations
 
@@ -8,38 +8,19 @@ from typing import TYPE_CHECKING, Any
 
 from commission.errors import CommissionError
 from commission.quantities import NOMENCLATURE, Kind
-from commission.safety import charge_limits, hazards, label_text, limit_order, strength_test_steps
+from commission.safety import (
+    charge_limits,
+    fluid_of,
+    hazards,
+    label_text,
+    limit_order,
+    oil_named,
+    relief_valves,
+    strength_test_steps,
+)
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
-    from commission.description.model import Medium
-
-GLYCOL = ("propylene glycol", "ethylene glycol")
-HYDROCARBONS = {"R-290", "R-600a", "R-1270", "R-170", "R-600"}
-
-
-def _freezer(facts: Facts) -> bool | None:
-    system = facts.system
-    if system.duty != "cold_storage":
-        return False
-    room = system.controls.room_temperature
-    if room is None and system.design is not None:
-        room = system.design.heat_source_inlet_temperature
-    return None if room is None else room < 273.15
-
-
-def _outdoors(facts: Facts) -> bool:
-    source = facts.system.heat_source
-    space = facts.loaded.plant.spaces.get(source.space or "")
-    return source.medium == "air" and space is not None and space.outdoors
-
-
-def _tower(facts: Facts) -> bool | None:
-    """Known where the condenser is evaporative; a chiller that gives heat to water may have a tower behind it."""
-    system = facts.system
-    if system.condenser.type == "evaporative":
-        return True
-    return None if system.heat_sink.medium == "water" and system.duty == "liquid_cooling" else False
 
 
 def _levels(facts: Facts) -> str | None:
@@ -50,19 +31,20 @@ def _levels(facts: Facts) -> str | None:
 def _other_season(facts: Facts) -> str:
     from commission.checklists.words import outdoor_conditions
 
-    if outdoor_conditions(facts.loaded, facts.system_id):
-        return "at least 15 K colder or warmer outdoors than the test"
-    return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
+    if not outdoor_conditions(facts.loaded, facts.system_id):
+        return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
+    if facts.system.duty == "comfort_cooling":
+        return "in the cooling season at least 8 K warmer or cooler outdoors than the test"
+    return "at least 15 K colder or warmer outdoors than the test"
 
 
 def _design_days(facts: Facts) -> str | None:
     """What the discharge shows on the design days that could be calculated; a sealed unit has no gauge there."""
     key = "discharge_temperature" if facts.system.sealed else "discharge_pressure"
-    climate = facts.loaded.plant.plant.climate
     texts = []
-    for word, outdoors in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
+    for word, outdoors in facts.design_days.items():
         prediction = facts.predictions.get(word)
-        if prediction is not None and outdoors is not None and key in prediction.expected:
+        if prediction is not None and key in prediction.expected:
             shown = facts.display.text(prediction.expected[key].value, NOMENCLATURE[key].kind)
             texts.append(f"{shown} at {facts.display.text(outdoors, Kind.TEMPERATURE)} outdoors")
     return ", ".join(texts) or None
@@ -74,29 +56,14 @@ def _flow_stages(facts: Facts) -> str | None:
 
 
 def _highest_discharge(facts: Facts) -> str | None:
-    components = facts.substance.components
-    if components == ("R-744",):
-        return None
-    if components == ("R-717",):
+    """The highest discharge temperature: of common practice for ammonia and some oils, else the plant's own limiter."""
+    if facts.substance.components == ("R-717",):
         return "reciprocating ammonia compressors stay below 120 to 140 °C, oil-flooded screws at 80 to 90 °C"
-    return "with polyolester oil never above 105 to 110 °C"
-
-
-def _three_phase(facts: Facts) -> bool | None:
-    phases = facts.system.nameplate.phases
-    return None if phases is None else phases == "3"
-
-
-def _rotation(facts: Facts) -> bool | None:
-    kind = facts.system.compressor.type
-    three = _three_phase(facts)
-    if kind == "reciprocating" or three is False or facts.system.compressor.drive == "variable speed":
-        return False
-    return None if kind is None or three is None else True
-
-
-def _antifreeze(medium: Medium) -> bool:
-    return medium.medium in GLYCOL
+    oil = oil_named(facts.system.compressor.oil)
+    limiter = facts.system.controls.discharge_temperature_limit
+    stops = None if limiter is None else f"the limiter stops it at {facts.display.text(limiter, Kind.TEMPERATURE)}"
+    kept = None if oil is None or oil.discharge is None else f"with {oil.family} oil never above {oil.discharge}"
+    return "; ".join(part for part in (kept, stops) if part) or None
 
 
 def _indoor_spaces(facts: Facts) -> str | None:
@@ -142,7 +109,7 @@ def _instruments(facts: Facts) -> str:
             else "no calibration stated"
         )
         texts.append(f"{key} ({item.serial or 'no serial stated'}, {until})")
-    return "; ".join(texts) or "No instrument is described; without serial and calibration a report is void."
+    return "; ".join(texts) or "none; without serial and calibration a report is void"
 
 
 def _steps(facts: Facts) -> str | None:
@@ -174,7 +141,8 @@ def _guarantees(facts: Facts) -> str:
             for key, value in promise.at.model_dump().items()
             if value is not None and key in NOMENCLATURE
         ]
-        label = NOMENCLATURE[promise.quantity].label.lower()
+        label = NOMENCLATURE[promise.quantity].label
+        label = label if label[:2].isupper() else label[0].lower() + label[1:]
         texts.append(f"{label} {promise.value} at {', '.join(at)}, decided by the {promise.decision} rule")
     return "; ".join(texts) or "nothing is guaranteed; the sheet shows deviations from the expected values, no verdict"
 
@@ -203,50 +171,60 @@ def _records(facts: Facts) -> str:
         "kind and quantity of refrigerant, each addition and recovery with date and cause, firm and person with "
         "certificate number, dates and results of leak checks and repairs"
     )
-    return f"{text}; kept 5 years (EU 2024/573 article 7)" if _greenhouse(facts) else text
+    return f"{text}; kept 5 years (EU 2024/573 article 7)" if facts.substance.listed else text
 
 
-def _greenhouse(facts: Facts) -> bool:
-    return facts.substance.listed
+RESETS = {
+    "automatic": "the compressor stops, and starts again by itself only after the pressure has fallen",
+    "by hand": "the compressor stops and stays out until somebody resets the device by hand",
+    "by hand with tool": "the compressor stops and stays out until somebody resets the device with a tool",
+}
+"""How a high-pressure limit device lets the machine run again: limiter, cut-out and safety cut-out of EN 12263."""
 
 
-def _known(name: str) -> Callable[[Facts, str], float | None]:
-    def find(facts: Facts, _: str) -> float | None:
-        known = getattr(facts.substance, name)
-        return None if known is None else float(known.value)
+def _reset(facts: Facts) -> str:
+    stated = facts.system.controls.high_pressure_reset
+    return RESETS.get(stated or "", "the compressor stops; write how the device is reset, which is not stated")
 
-    return find
+
+def _relief_valves(facts: Facts) -> str | None:
+    """The set pressure of each relief valve, by where it sits."""
+    found = relief_valves(facts.system).items()
+    bar = facts.loaded.absolute
+    return ", ".join(f"{name} {facts.display.text(bar(p), Kind.PRESSURE)}" for name, p in found) or None
+
+
+def _power_counts(facts: Facts) -> str | None:
+    """What the rated power counts, which is what the expected one counts."""
+    system = facts.system
+    unit = system.condensing_unit
+    stated = [p.includes for p in system.rated_points] + ([unit.includes] if unit is not None else [])
+    counted = next((includes for includes in stated if includes is not None), None)
+    if counted is None:
+        return None
+    return ", ".join(counted[:-1]) + (" and " if len(counted) > 1 else "") + counted[-1]
+
+
+REST_AT = (283.15, 293.15, 303.15)
+"""Temperatures at which the pressure at rest is shown, K."""
+
+
+def _rest_pressures(facts: Facts) -> str | None:
+    """The pressure of liquid and vapour at rest at a few temperatures; a blend lies between dew and bubble point."""
+    fluid = fluid_of(facts.loaded, facts.system_id)
+    texts = []
+    for T in REST_AT:
+        if fluid.T_critical <= T:
+            continue
+        low, high = fluid.dew(T).p, fluid.bubble(T).p
+        first, last = (facts.display.text(p, Kind.PRESSURE) for p in (low, high))
+        span = last if first == last else f"{first.split(' ')[0]} to {last}"
+        texts.append(f"{span} at {facts.display.text(T, Kind.TEMPERATURE, 0)}")
+    return ", ".join(texts) or None
 
 
 PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
     {
-        "fluid.name": lambda f, _: f.substance.name,
-        "fluid.safety_class": lambda f, _: f.substance.safety_class,
-        "fluid.flammable": lambda f, _: f.substance.flammable,
-        "fluid.highly_flammable": lambda f, _: f.substance.flammability in ("2", "3"),
-        "fluid.toxic": lambda f, _: f.substance.toxicity == "B",
-        "fluid.heavy": lambda f, _: f.substance.heavy,
-        "fluid.fluorinated": lambda f, _: f.substance.fluorinated,
-        "fluid.ammonia": lambda f, _: "R-717" in f.substance.components,
-        "fluid.carbon_dioxide": lambda f, _: f.substance.components == ("R-744",),
-        "fluid.blend": lambda f, _: len(f.substance.components) > 1,
-        "fluid.liquid_only": lambda f, _: f.substance.liquid_only,
-        "fluid.lfl": _known("lfl"),
-        "fluid.practical_limit": _known("practical_limit"),
-        "fluid.gwp": _known("gwp"),
-        "law.leak_checks": lambda f, _: f.duty.applies,
-        "law.greenhouse_gas": lambda f, _: _greenhouse(f),
-        "room.walk_in": lambda f, _: f.system.duty == "cold_storage" and not f.system.sealed,
-        "room.freezer": lambda f, _: _freezer(f),
-        "source.liquid": lambda f, _: f.system.heat_source.medium != "air",
-        "sink.liquid": lambda f, _: f.system.heat_sink.medium != "air",
-        "source.antifreeze": lambda f, _: _antifreeze(f.system.heat_source),
-        "sink.antifreeze": lambda f, _: _antifreeze(f.system.heat_sink),
-        "sink.tower": lambda f, _: _tower(f),
-        "source.outdoors": lambda f, _: _outdoors(f),
-        "piped.on_site": lambda f, _: not f.system.sealed,
-        "drive.three_phase": lambda f, _: _three_phase(f),
-        "rotation.matters": lambda f, _: _rotation(f),
         "words.system": lambda f, _: f.system.name or f.system_id,
         "words.evaporator_space": lambda f, _: f.space_name("evaporator"),
         "words.condensing_space": lambda f, _: f.space_name("condensing_unit"),
@@ -265,9 +243,11 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.flow_stages": lambda f, _: _flow_stages(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),
-        "only.flammable": lambda f, _: "" if f.substance.flammable else None,
-        "only.hydrocarbon": lambda f, _: "" if set(f.substance.components) <= HYDROCARBONS else None,
         "words.records": lambda f, _: _records(f),
+        "words.reset": lambda f, _: _reset(f),
+        "words.relief_valves": lambda f, _: _relief_valves(f),
+        "words.power_counts": lambda f, _: _power_counts(f),
+        "words.rest_pressures": lambda f, _: _rest_pressures(f),
     }
 )
-"""What each derived name is read from. Keys are those of `names.WORDS`; a test holds the two together."""
+"""What each phrase is made of."""

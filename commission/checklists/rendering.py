@@ -7,10 +7,12 @@ from typing import TYPE_CHECKING
 
 from commission.checklists.evaluate import evaluate, parse_literal
 from commission.checklists.language import Expression, Value
+from commission.checklists.templates import Template
+from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Display, Explained, Kind, parse
 
 if TYPE_CHECKING:
-    from commission.checklists.library import CheckedItem, Template
+    from commission.checklists.library import CheckedItem
     from commission.checklists.words import Facts
 
 VACUUM = 5000.0
@@ -59,8 +61,6 @@ def show(value: float, kind: Kind, display: Display) -> str:
 
 def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
     """The text with its values, and the calculated numbers in it; what is not known says so and leaves room."""
-    from commission.checklists.library import Template
-
     parts: list[str] = []
     explained: list[Explained] = []
     for part in template.parts:
@@ -68,7 +68,7 @@ def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
             parts.append(part)
             continue
         if isinstance(part, Template):
-            if _all_known(part, facts):
+            if _stands(part, facts):
                 inner, more = fill(part, facts)
                 parts.append(inner)
                 explained += more
@@ -79,8 +79,12 @@ def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
     return "".join(parts), tuple(explained)
 
 
-def _all_known(template: Template, facts: Facts) -> bool:
+def _stands(template: Template, facts: Facts) -> bool:
+    """Whether a part that can be left out stands: its condition is yes, and all its values are known."""
     barometric_pressure = facts.loaded.barometric_pressure
+    when = template.when
+    if when is not None and evaluate(when, facts.lookup, barometric_pressure).content is not True:
+        return False
     return all(
         evaluate(part, facts.lookup, barometric_pressure).known
         for part in template.parts
@@ -94,6 +98,8 @@ def _word(value: Value, display: Display) -> str:
     if isinstance(value.content, bool):
         return "yes" if value.content else "no"
     if isinstance(value.content, float) and isinstance(value.type, Kind):
+        if value.type is Kind.POWER and abs(value.content) < 1000.0:
+            return f"{value.content:.0f} W"
         return show(value.content, value.type, display)
     return str(value.content)
 
@@ -116,8 +122,13 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
         text = missing if missing.startswith(STATED_NOWHERE) else f"not calculated: {missing}"
         return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
     numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}
-    value, low, high = _range(numbers, within if isinstance(within, str) else None, kind, explained)
+    margin = _margin(numbers.get("value"), within if isinstance(within, str) else None, kind, explained)
+    readable = _readable(item, numbers.get("value"), facts) if margin is not None and within != "band" else None
+    finest = readable is not None and margin is not None and readable[1] > margin
+    value, low, high = _range(numbers, readable[1] if finest and readable else margin)
     text = _range_text(value, low, high, kind, facts.display)
+    if finest and readable:
+        text += f" (no closer than {readable[0]} can read)"
     if within == "band" and low is not None and "expected." in _text_of(item):
         text += f", expected at {facts.lookup('words.condition').content}"
     shown = "; ".join(part for part in (text, says) if part)
@@ -149,23 +160,41 @@ def _work(bound: Expression | str, kind: Kind, facts: Facts) -> Value:
     return Value(kind, parse_literal(bound, kind, facts.loaded.barometric_pressure))
 
 
-def _range(
-    numbers: dict[str, float], within: str | None, kind: Kind, explained: tuple[Explained, ...]
-) -> tuple[float | None, float | None, float | None]:
-    """Value, lower and upper bound in SI."""
-    value, low, high = numbers.get("value"), numbers.get("at_least"), numbers.get("at_most")
+def _margin(value: float | None, within: str | None, kind: Kind, explained: tuple[Explained, ...]) -> float | None:
+    """The margin on both sides of a value in SI: stated, a share of it, or the band of the expected value."""
     if value is None or within is None:
-        return value, low, high
+        return None
     if within == "band":
         spread = next((e.uncertainty for e in explained if e.value == value and e.uncertainty is not None), None)
-        if spread is None:
-            return value, low, high
-        margin = COVERAGE * spread
-    elif within.strip().endswith("%") and kind is not Kind.RATIO:
-        margin = abs(value) * parse(within, Kind.RATIO)
-    else:
-        margin = parse(within, _margin_kind(kind))
-    return value, max(value - margin, low or value - margin), min(value + margin, high or value + margin)
+        return None if spread is None else COVERAGE * spread
+    if within.strip().endswith("%") and kind is not Kind.RATIO:
+        return abs(value) * parse(within, Kind.RATIO)
+    return parse(within, _margin_kind(kind))
+
+
+def _readable(item: CheckedItem, value: float | None, facts: Facts) -> tuple[str, float] | None:
+    """The instrument that the system names for the quantity, and its expanded uncertainty (95 %) at this value."""
+    from commission.acceptance import instrument_budget
+
+    key = item.entry.quantity
+    named = facts.system.measured_with.get(key or "")
+    instrument = facts.loaded.plant.instruments.get(named or "")
+    if key is None or named is None or instrument is None or value is None:
+        return None
+    try:
+        budget = instrument_budget(instrument, key, value, facts.loaded.barometric_pressure)
+    except NotCalculatedError:
+        return None
+    return named, budget.expanded()
+
+
+def _range(numbers: dict[str, float], margin: float | None) -> tuple[float | None, float | None, float | None]:
+    """Value, lower and upper bound in SI; a bound beside a value with a margin caps the margin."""
+    value, low, high = numbers.get("value"), numbers.get("at_least"), numbers.get("at_most")
+    if value is None or margin is None:
+        return value, low, high
+    first, last = value - margin, value + margin
+    return value, first if low is None else max(first, low), last if high is None else min(last, high)
 
 
 def _margin_kind(kind: Kind) -> Kind:

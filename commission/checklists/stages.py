@@ -24,11 +24,13 @@ if TYPE_CHECKING:
 class Item:
     """One act or observation, ready to be shown.
 
-    `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown), yes/no,
-    a file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated numbers in its
-    texts. `mark` is that of the source, or of a figure from memory in the texts where that is weaker. `note` says why
-    an item is shown although a fact it depends on is not known. `left_out` holds the reason where the plant's own list
-    leaves the item out. `origin` is the data file and line.
+    `answer` says what is written down: a value (of `quantity`, a key of the nomenclature, in `unit` as shown),
+    yes/no, a file name or text; "not applicable" with a reason is always allowed. `figures` are all calculated
+    numbers in its texts. `reading` says that it asks for a reading of the running plant, which a record holds under
+    its readings. `rest_at` and `as_answered` name the item whose answer decides what this one must be. `mark` is
+    that of the source, or of a figure from memory in the texts where that is weaker. `note` says why an item is
+    shown although a fact it depends on is not known. `left_out` holds the reason where the plant's own list leaves
+    the item out. `origin` is the data file and line.
     """
 
     id: str
@@ -44,6 +46,9 @@ class Item:
     who: str | None = None
     quantity: str | None = None
     unit: str | None = None
+    reading: bool = False
+    rest_at: str | None = None
+    as_answered: str | None = None
     figures: tuple[Explained, ...] = ()
     note: str | None = None
     left_out: str | None = None
@@ -174,6 +179,9 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
         who=texts.get("who"),
         quantity=entry.quantity,
         unit=_unit(item, facts),
+        reading=entry.must_read is not None and entry.must_read.value == f"expected.{entry.quantity}",
+        rest_at=entry.must_read.rest_at if entry.must_read else None,
+        as_answered=entry.must_read.as_answered if entry.must_read else None,
         figures=tuple(dict.fromkeys(figures)),
         note=note,
         left_out=item.left_out,

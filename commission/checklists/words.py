@@ -7,12 +7,13 @@ from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
+from commission.checklists.derived import DERIVED
 from commission.checklists.language import Value
 from commission.checklists.names import names
 from commission.checklists.phrases import PHRASES
 from commission.errors import NotCalculatedError
 from commission.quantities import Display, Kind, Pressure
-from commission.safety import Figures, LeakDuty, Substance, leak_duty_of
+from commission.safety import Figures, LeakDuty, Substance, hottest_ambient, leak_duty_of
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
@@ -46,6 +47,11 @@ class Facts:
     def duty(self) -> LeakDuty:
         """The leak-check duty of the system."""
         return leak_duty_of(self.loaded, self.system_id)
+
+    @cached_property
+    def design_days(self) -> dict[str, float]:
+        """Outdoor air of the hottest and the coldest design day, K."""
+        return design_days(self.loaded, self.system_id)
 
     def space_id(self, part: str) -> str:
         """The id of the space that holds a part, or that its air comes from; empty where none is named."""
@@ -84,13 +90,13 @@ def predictions(
         return {"expected": model}, {"hottest": reason, "coldest": reason}
     found: dict[str, Prediction] = {}
     missing: dict[str, str] = {}
-    climate = loaded.plant.plant.climate
+    days = design_days(loaded, system_id)
     wanted: dict[str, Mapping[str, float] | str | None] = {"expected": conditions}
-    for word, temperature in (("hottest", climate.summer_dry_bulb), ("coldest", climate.winter_dry_bulb)):
+    for word in ("hottest", "coldest"):
         if word == "hottest" and loaded.system(system_id).duty == "space_heating":
             wanted[word] = "nothing is heated on the hottest day"
             continue
-        wanted[word] = _on_day(model, outdoor_conditions(loaded, system_id), word, temperature)
+        wanted[word] = _on_day(model, outdoor_conditions(loaded, system_id), word, days.get(word))
     for word, at in wanted.items():
         if model is None:
             missing[word] = "this system could not be calculated"
@@ -102,6 +108,13 @@ def predictions(
             except NotCalculatedError as error:
                 missing[word] = str(error)
     return found, missing
+
+
+def design_days(loaded: LoadedPlant, system_id: str) -> dict[str, float]:
+    """Outdoor air of the hottest and the coldest design day in K, where the plant says it."""
+    hottest = hottest_ambient(loaded, system_id)
+    found = {"hottest": None if hottest is None else hottest[0], "coldest": loaded.plant.plant.climate.winter_dry_bulb}
+    return {word: temperature for word, temperature in found.items() if temperature is not None}
 
 
 def outdoor_conditions(loaded: LoadedPlant, system_id: str) -> tuple[str, ...]:
@@ -138,7 +151,7 @@ def _on_day(
 def _look_up(facts: Facts, name: str) -> Value:
     known = names()[name]
     head, _, rest = name.partition(".")
-    reader: Callable[[Facts, str], Any] | None = PHRASES.get(name)
+    reader: Callable[[Facts, str], Any] | None = PHRASES.get(name) or DERIVED.get(name)
     if reader is not None:
         content = reader(facts, rest)
         return _value(known.type, content, f"not known: {known.says}")

@@ -10,7 +10,7 @@ from commission.safety.facts import load
 
 @dataclass(frozen=True, slots=True)
 class Oil:
-    """A family of oils. `discharge` is the highest discharge temperature of common practice in words, if there is one."""
+    """A family of oils; `discharge` is the highest discharge temperature of common practice in words, if any."""
 
     family: str
     draws_water: bool

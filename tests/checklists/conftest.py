@@ -12,6 +12,7 @@ from commission.checklists import Stage, stages
 from commission.description import LoadedPlant, load_plant
 
 YARD = Path(__file__).parent / "plants" / "yard"
+DAIRY = Path(__file__).parent / "plants" / "dairy"
 SYSTEMS = ("freezer", "split", "heat-pump", "chiller", "water-heater", "tower-chiller")
 
 
@@ -40,7 +41,17 @@ def yard_stages() -> Callable[[str], tuple[Stage, ...]]:
 @pytest.fixture(scope="session")
 def cold_room(example_folder: Path) -> tuple[Stage, ...]:
     """The stages of the example's cold room, with its fitted model."""
+    return fitted_stages(load_plant(example_folder), "cold-room")
+
+
+@pytest.fixture(scope="session")
+def propane_room() -> tuple[Stage, ...]:
+    """The stages of a cold room of 6 kW with R-290, with its fitted model."""
+    return fitted_stages(load_plant(DAIRY), "propane-room")
+
+
+def fitted_stages(loaded: LoadedPlant, system_id: str) -> tuple[Stage, ...]:
+    """The stages of a system with its fitted model."""
     from commission.prediction import fit
 
-    loaded = load_plant(example_folder)
-    return stages(loaded, "cold-room", fit(loaded, "cold-room"))
+    return stages(loaded, system_id, fit(loaded, system_id))

@@ -185,7 +185,7 @@ def test_a_figure_from_memory_keeps_its_mark_in_the_item(yard: LoadedPlant) -> N
 
 def test_a_figure_from_memory_weakens_an_item_that_was_read(example_copy: Path) -> None:
     """The ratio of 0.9 is from memory (EN 378-2): an item that quotes it says so though its source was read."""
-    (example_copy / "checklists").mkdir()
+    (example_copy / "checklists").mkdir(exist_ok=True)
     text = """stage: safety
 items:
   - {id: safety.plain, do: Read it., source: ours, mark: V1}

@@ -84,8 +84,19 @@ def test_a_large_receiver_needs_two_relief_valves() -> None:
 
 
 def test_carbon_dioxide_at_rest_needs_relief() -> None:
-    """Above 31 °C there is no saturation to hold the pressure down, and the water heater states no relief valve."""
+    """Above 31 °C there is no saturation to hold the pressure down; valves beside the receiver's count as stated."""
     loaded = load_plant(YARD)
+    found = relief_duties(loaded, "water-heater", safety_figures(loaded, "water-heater"))
+    assert [duty.stated for duty in found] == [True]
+
+
+def test_carbon_dioxide_without_any_relief_is_found(tmp_path: Path) -> None:
+    """The same water heater without its valves."""
+    text = (YARD / "plant.yaml").read_text(encoding="utf-8")
+    valves = "    relief_valves: {gas cooler: 130 bar g, low side: 80 bar g}\n"
+    assert valves in text
+    (tmp_path / "plant.yaml").write_text(text.replace(valves, ""), encoding="utf-8")
+    loaded = load_plant(tmp_path)
     found = relief_duties(loaded, "water-heater", safety_figures(loaded, "water-heater"))
     assert [duty.stated for duty in found] == [False]
 
