@@ -47,7 +47,7 @@ def test_a_plant_that_misses_its_guarantee_leaves_with_one(commission: Run, exam
     )
     visit = tmp_path / "poor.yaml"
     visit.write_text(text.replace("2026-05-14T", "2026-05-15T"), encoding="utf-8")
-    (tmp_path / "room-log-2026-05-07-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    (tmp_path / "cold-room-log-2026-05-12-to-14.csv").write_text("time,room\n", encoding="utf-8")
     done = commission("compare", example_copy, visit)
     assert done.returncode == 1, done.stdout + done.stderr
     assert "not conforming" in done.stdout
@@ -69,7 +69,7 @@ def test_filing_writes_once_and_lists_the_digest(commission: Run, example_copy: 
     text = re.sub(r"\nitem_updates:.*?(?=\n\w)", "", text, flags=re.DOTALL)
     visit = tmp_path / "june.yaml"
     visit.write_text(text, encoding="utf-8")
-    (tmp_path / "room-log-2026-05-07-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    (tmp_path / "cold-room-log-2026-05-12-to-14.csv").write_text("time,room\n", encoding="utf-8")
     done = commission("record", example_copy, visit)
     assert done.returncode == 0, done.stderr
     filed = Path(done.stdout.strip())
@@ -157,5 +157,5 @@ def test_values_that_answer_items_but_are_no_readings_are_named(commission: Run,
     told = [line for line in done.stderr.splitlines() if "is not compared" in line]
     assert told == [
         "mind: the answer to performance.suction-pressure is not compared; "
-        "write it under readings as suction_pressure too"
+        "write it under readings as suction_pressure, once"
     ]
