@@ -175,7 +175,12 @@ def complete(
         raise InputError(*problems)
     wet = given.pop(WET_BULB, None)
     if wet is not None:
-        dry = given.get("heat_source_inlet_temperature", axes["heat_source_inlet_temperature"].rated)
+        rated = OUTDOOR in axes and _other_end(OUTDOOR) not in given
+        dry = given.get(OUTDOOR, axes[OUTDOOR].rated if rated else None)
+        if dry is None:
+            raise InputError(
+                Problem("a wet bulb needs the temperature of the air that enters beside it", path=WET_BULB)
+            )
         given[HUMIDITY] = moist_air(dry, pressure, wet_bulb=wet).relative_humidity
     whole: dict[str, float] = {}
     for key, axis in axes.items():

@@ -195,8 +195,9 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
     uncertain = _uncertain(problem.facts, values)
     problem = replace(problem, loose=tuple(k for k in uncertain if k not in CONSIDERED))
     held: dict[str, float] = {}
+    sizes = start
     for _ in range(6):
-        table = Table(problem, {**values.plain(), **held})
+        table = Table(problem, {**values.plain(), **held}, sizes)
         x, gaps, plan, points, matrix = table.minimum(table.pack(start))
         start, found = table.unpack(x)
         beyond = {k: b for k in problem.loose if (b := _bound(problem.facts.assumptions[k], found[k])) is not None}

@@ -18,6 +18,7 @@ from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
 from commission.prediction.rated import reference
+from commission.prediction.refusals import cannot_be, fitted, walk
 from commission.properties import Refrigerant
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 
@@ -141,7 +142,7 @@ class SystemModel:
             InputError, NotCalculatedError: as `predict`.
         """
         whole, _, _ = self._complete(conditions)
-        at, start = self._values(self.fit.plan, whole, None)
+        at, start = self._solved(whole)
         table: dict[str, dict[str, float]] = {}
         for key in whole:
             step = 0.1 if NOMINAL_STEP.get(key, 0.0) == 0.0 else NOMINAL_STEP[key] * whole[key]
@@ -170,7 +171,7 @@ class SystemModel:
             InputError, NotCalculatedError: as `predict`.
         """
         whole, filled, _ = self._complete(conditions)
-        nominal, start = self._values(self.fit.plan, whole, None)
+        nominal, start = self._solved(whole)
         effects: dict[str, dict[str, float]] = {}
         for cause, change, _ in self._changes(whole, filled, nominal, start, _Starts()):
             if cause != SCATTER:
@@ -212,31 +213,22 @@ class SystemModel:
     ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
         given, note = with_weather_curve(self.facts, self.condition_axes, conditions or {})
         whole, filled, outside = complete(self.condition_axes, given, self.facts.pressure)
+        why = cannot_be(self.facts, whole)
+        if why is not None:
+            raise NotCalculatedError(why)
         return whole, filled, (*note, *outside)
 
-    def _nearest(self, whole: Mapping[str, float], error: NotCalculatedError) -> NotCalculatedError:
-        """The reason why there is no balance, with the nearest condition on the way from the rated one that has one."""
-        rated = self.rated_condition
-        if set(rated) != set(whole):
-            return error
-        low, high = 0.0, 1.0
-        for _ in range(7):
-            middle = 0.5 * (low + high)
-            try:
-                self._values(self.fit.plan, {k: rated[k] + middle * (v - rated[k]) for k, v in whole.items()}, None)
-                low = middle
-            except NotCalculatedError:
-                high = middle
-        if low == 0.0:
-            return error
-        shown = self.facts.shown
-        near = ", ".join(
-            f"{NOMENCLATURE[k].label.lower()} {shown.of(k, rated[k] + low * (v - rated[k]))}"
-            for k, v in whole.items()
-            if abs(v - rated[k]) > 1e-9
-        )
-        return NotCalculatedError(f"{error}; towards this condition there still is one at {near}")
+    def _solved(
+        self, whole: Mapping[str, float], start: OperatingPoint | None = None, plan: Plan | None = None
+    ) -> tuple[Found, OperatingPoint]:
+        """As `_values`, by way of the rated condition where it is not found at once; the reason is then in words."""
+        plan = plan or self.fit.plan
+        try:
+            return self._values(plan, whole, start)
+        except NotCalculatedError:
+            return walk(self.facts, self.rated_condition, whole, lambda at, near: self._values(plan, at, near))
 
+    @in_words
     def _values(
         self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
     ) -> tuple[Found, OperatingPoint]:
@@ -253,11 +245,11 @@ class SystemModel:
         for n, variant in enumerate(self.fit.variants):
             asked = {**whole, **{k: whole[k] * variant.plan.own_conditions[k] / v for k, v in own.items()}}
             try:
-                found, point = self._values(variant.plan, asked, starts.variants.get(n, start))
+                found, point = self._solved(asked, starts.variants.get(n, start), variant.plan)
             except NotCalculatedError as error:
                 raise NotCalculatedError(
-                    f"this condition lies at the edge of what the machine can do: within the range of "
-                    f"{self._title(variant.cause)} there is no balance ({error})"
+                    "this condition lies at the edge of what the machine can do. Within the range of "
+                    f"{self._title(variant.cause)} {error}"
                 ) from error
             starts.variants[n] = point
             change = {k: variant.sign * (found.values[k] - v) for k, v in nominal.values.items() if k in found.values}
@@ -270,10 +262,7 @@ class SystemModel:
     @in_words
     def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
         whole, filled, outside = self._complete(conditions)
-        try:
-            nominal, point = self._values(self.fit.plan, whole, starts.nominal)
-        except NotCalculatedError as error:
-            raise self._nearest(whole, error) from error
+        nominal, point = self._solved(whole, starts.nominal)
         starts.nominal = point
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
         for cause, change, _ in self._changes(whole, filled, nominal, point, starts):
@@ -343,7 +332,7 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
     """
     facts = facts_of(loaded, system_id)
     notes = left_out(facts)
-    found = fit_system(facts)
+    found = fitted(lambda: fit_system(facts))
     case = found.cases[reference(found.cases)]
     plan = found.plan
     axes = axes_of(facts, plan, case)

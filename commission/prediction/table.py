@@ -15,6 +15,17 @@ from commission.prediction.problem import Problem, plan_of
 from commission.prediction.simulating import Seen, observed, simulate
 
 Array = np.ndarray[tuple[int, ...], np.dtype[np.float64]]
+CONDUCTANCES = (2, 3)
+SIZE = 1.0
+"""Standard uncertainty of a conductance about its start, as a logarithm: without it, points that ask for a better
+machine than there is would be met by exchangers without end (common practice, no source)."""
+ROUNDS, TRIALS = 25, 10
+GAIN = 0.01
+"""Gain in the sum of squares, over their mean, that ends the search: a tenth of a standard uncertainty is then left."""
+SMALL, NEAR = 1e-3, 1.0
+"""Step that counts as none, and way over which a Jacobian still holds: standard uncertainties, or logarithms."""
+LONGEST = 0.7
+"""Longest step of an unknown; the machine may not be calculable far away."""
 
 
 def move(assumption: Assumption) -> float:
@@ -40,10 +51,14 @@ def gaps_of(
 
 @dataclass(frozen=True)
 class Table:
-    """Weighted least squares over free levels (logarithms) and loose assumptions (in standard uncertainties)."""
+    """Weighted least squares over free levels (logarithms) and loose assumptions (in standard uncertainties).
+
+    `start` are the levels that stated or assumed temperature differences give at the reference point.
+    """
 
     problem: Problem
     values: Mapping[str, float]
+    start: Levels
 
     def with_value(self, key: str, value: float) -> Table:
         """The same with another value of one assumption that is not loose."""
@@ -69,50 +84,55 @@ class Table:
         return plan_of(self.problem, a, levels)
 
     def gaps(self, x: Array, starts: Sequence[Seen] | None) -> tuple[Array, Plan, tuple[Seen, ...]]:
-        """Misses of data and of assumptions, in standard uncertainties."""
+        """Misses of data, of conductances and of assumptions, in standard uncertainties."""
         levels, a = self.unpack(x)
         data, plan, points = gaps_of(self.problem, a, levels, starts)
-        return np.concatenate([data, x[len(self.problem.free) :]]), plan, points
+        free = self.problem.free
+        sizes = [(x[n] - self.start.logs()[k]) / SIZE for n, k in enumerate(free) if k in CONDUCTANCES]
+        return np.concatenate([data, sizes, x[len(free) :]]), plan, points
 
     def minimum(self, x: Array) -> tuple[Array, Array, Plan, tuple[Seen, ...], Array]:
-        """Gauss-Newton with the Jacobian of the start, made anew once near the minimum."""
-        gaps, plan, points = self.gaps(x, None)
-        columns = list(range(len(x)))
-        for _ in range(3):
-            matrix = self._jacobian(x, gaps, points, columns)
-            columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
-            moved = 0.0
-            for _ in range(4):
-                step: Array = np.asarray(np.linalg.lstsq(matrix, -gaps, rcond=None)[0], dtype=np.float64)
-                step *= min(1.0, 0.7 / max(float(np.abs(step).max()), 1e-12))
-                x, gaps, plan, points = self._step(x, step, gaps, points)
-                moved = max(moved, float(np.abs(step).max()))
-                if float(np.abs(step).max()) < 1e-3:
-                    break
-            if moved < 1.0:
-                break
-        return x, gaps, plan, points, matrix
+        """Least squares by Levenberg and Marquardt (Marquardt, SIAM J. Applied Mathematics 11, 1963, 431-441).
 
-    def _step(
-        self, x: Array, step: Array, gaps: Array, points: Sequence[Seen]
-    ) -> tuple[Array, Array, Plan, tuple[Seen, ...]]:
-        """The step, halved while the machine cannot be calculated there or the sum of squares grows beyond doubling.
+        The Jacobian learns from each step (Broyden, Mathematics of Computation 19, 1965, 577-593) and is made anew
+        where the way was long. The last one belongs to the minimum within `NEAR`.
 
         Raises:
-            NotCalculatedError: even a small step leads where no balance is.
+            NotCalculatedError: no machine is near the start, or the minimum is not found: the points contradict.
         """
-        refused: NotCalculatedError | None = None
-        for trial in range(6):
-            try:
-                found = self.gaps(x + step * 0.5**trial, points)
-            except NotCalculatedError as error:
-                refused = error
-                continue
-            if float(found[0] @ found[0]) < 2 * float(gaps @ gaps) + 1.0:
-                return x + step * 0.5**trial, *found
-        if refused is not None:
-            raise refused
+        gaps, plan, points = self.gaps(x, None)
+        columns, damping = list(range(len(x))), 0.0
+        for _ in range(ROUNDS):
+            matrix = self._jacobian(x, gaps, points, columns)
+            columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
+            origin, learnt = x, matrix
+            for _ in range(TRIALS):
+                step = _damped(learnt, gaps, damping)
+                if float(np.abs(step).max()) < 1e-3 * SMALL:
+                    break
+                try:
+                    found = self.gaps(x + step, points)
+                except NotCalculatedError:
+                    damping = max(10 * damping, 1e-3)
+                    continue
+                learnt = learnt + np.outer(found[0] - gaps - learnt @ step, step) / float(step @ step)
+                if float(found[0] @ found[0]) > float(gaps @ gaps):
+                    damping = max(10 * damping, 1e-3)
+                    continue
+                x, (gaps, plan, points) = x + step, found
+                damping = 0.2 * damping if damping > 1e-6 else 0.0
+                if float(np.abs(step).max()) < SMALL or self._done(learnt, gaps):
+                    break
+            if float(np.abs(x - origin).max()) < NEAR and self._done(matrix, gaps):
+                return x, gaps, plan, points, matrix
         raise NotCalculatedError("the rated points contradict each other: no machine comes near all of them")
+
+    def _done(self, matrix: Array, gaps: Array) -> bool:
+        """Whether a further step would gain next to nothing beside the scatter of the data."""
+        step = np.linalg.lstsq(matrix, -gaps, rcond=None)[0]
+        left = gaps + matrix @ step
+        squares = float(gaps @ gaps)
+        return squares - float(left @ left) < GAIN * max(1.0, squares / max(len(gaps) - len(step), 1))
 
     def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Seen], columns: Sequence[int]) -> Array:
         """By differences; `columns` are the unknowns that move a datum, the others are priors alone."""
@@ -134,6 +154,15 @@ class Table:
         moved = x.copy()
         moved[n] += step
         return (self.gaps(moved, starts)[0] - gaps) / step
+
+
+def _damped(matrix: Array, gaps: Array, damping: float) -> Array:
+    """The step of Levenberg and Marquardt, at most `LONGEST`."""
+    sizes = np.sqrt(damping) * np.diag(np.linalg.norm(matrix, axis=0))
+    whole = np.vstack([matrix, sizes]) if damping else matrix
+    wanted = np.concatenate([-gaps, np.zeros(matrix.shape[1])]) if damping else -gaps
+    step: Array = np.asarray(np.linalg.lstsq(whole, wanted, rcond=None)[0], dtype=np.float64)
+    return step * min(1.0, LONGEST / max(float(np.abs(step).max()), 1e-12))
 
 
 def scatter_directions(inverse: Array, rows: Array) -> list[Array]:

@@ -136,5 +136,5 @@ def test_outside_its_range_a_prediction_warns(cold_room: SystemModel) -> None:
 def test_a_condition_without_balance_is_not_calculated(cold_room: SystemModel) -> None:
     """Where no balance exists, the reason and the nearest condition that has one stand instead of a number."""
     with pytest.raises(NotCalculatedError) as caught:
-        cold_room.predict({"heat_sink_inlet_temperature": 105 + C})
-    assert "towards this condition there still is one at heat sink inlet temperature" in str(caught.value)
+        cold_room.predict({"heat_sink_inlet_temperature": 95 + C})
+    assert "coming from the rated condition it still runs at heat sink inlet temperature" in str(caught.value)
