@@ -28,6 +28,7 @@ from commission.acceptance.routes import (
     heat_meter,
     liquid_side,
 )
+from commission.acceptance.supply import supply
 from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE
 
@@ -159,9 +160,9 @@ def evaluate(
     )
     for key in have:
         if key not in expectations and key not in {*used, *day.spent, *not_judged, "barometric_pressure"}:
-            not_judged[key] = (
-                why or (prediction.not_calculated.get(key) if prediction else None) or "nothing is expected of it"
-            )
+            said = supply(key, have[key].value, loaded.system(model.system_id))
+            missing = prediction.not_calculated.get(key) if prediction else None
+            not_judged[key] = said or why or missing or "nothing is expected of it"
     return Evaluation(
         used, measured, derived, tuple(routes), tuple(refusals), expectations, deviations,
         impossible(model.refrigerant, _independent(have, routes, power), inputs.shell), not_judged,
