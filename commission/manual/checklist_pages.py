@@ -15,6 +15,10 @@ if TYPE_CHECKING:
     from commission.checklists import Item, Stage
 
 
+UPKEEP = "upkeep"
+"""The stage of what comes again for as long as the plant runs: it is not part of commissioning."""
+
+
 @dataclass(frozen=True, slots=True)
 class FigureView:
     """One calculated number inside an item."""
@@ -83,9 +87,12 @@ def checklist_page(plant: PlantData, data: SystemData) -> Sheet:
     try:
         found = stages(plant.loaded, data.id, data.model)
         views = tuple(_stage(s, n, data, plant.display) for n, s in enumerate(found, start=1))
+        once = [v for v in views if v.stage.id != UPKEEP]
         context |= {
             "stages": views,
-            "count": sum(len(v.items) for v in views),
+            "count": sum(len(v.items) for v in once),
+            "stage_count": len(once),
+            "again": sum(len(v.items) for v in views) - sum(len(v.items) for v in once),
             "plant_name": plant.name,
             "system_name": data.name,
             "digest": plant.loaded.digest[:12],
