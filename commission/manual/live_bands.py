@@ -21,10 +21,10 @@ from commission.errors import NotCalculatedError
 if TYPE_CHECKING:
     from commission.acceptance import Evaluation
     from commission.description import LoadedPlant
-    from commission.manual.live_series import Point
+    from commission.manual.live_fit import Point
     from commission.prediction import Nominal, SystemModel
 
-SAMPLES = {1: 5, 2: 9, 3: 14}
+SAMPLES = {1: 5, 2: 9, 3: 13}
 """Visits worked through, by the number of axes; a regime gets its share of them by its size."""
 
 

@@ -14,7 +14,7 @@ from commission.description.model import Medium
 from commission.errors import NotCalculatedError
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_bands import TWO_SIDED, Bands, make_bands
-from commission.manual.live_plan import ALSO_NEEDED, DERIVED, LivePlan
+from commission.manual.live_plan import DERIVED, LINE_LOSSES, LivePlan
 from commission.manual.live_series import Asked, LiveTable, along_the_way, grid_axes, make_table
 from commission.manual.showing import label_of, unit_of
 from commission.quantities import NOMENCLATURE, Display, Kind, Reference
@@ -28,8 +28,10 @@ SATURATION_ROWS = 96
 """Rows of the saturation lines, even in the logarithm of pressure: read between them within 0.02 K."""
 NEAR_CRITICAL = 0.98
 """Share of the critical pressure up to which a saturation temperature is told, as `acceptance` does."""
-DIGITS = 1e-7
-"""Steps in which the factors of a series are written, as a share of the largest of its row."""
+STEP = 0.01
+"""Step in which expected values are written, as a share of the deviation that a reading could just show."""
+NOTHING = 3
+"""What a series leaves nowhere more of than so many steps is not carried."""
 _LIQUID_STEP = 5.0
 _REGIME_SIGNS = "0123456789abcdefghijklmnopqrstuvwxyz"
 
@@ -58,7 +60,8 @@ def calculate(plant: PlantData, model: SystemModel, plan: LivePlan) -> Calculate
         raise NotCalculatedError("nowhere in the range of the conditions is there a balance")
     bands = make_bands(plant.loaded, model, axes, found, rated, plan.readings, plan.instruments, _counted(plan))
     known = {k for one in found.values() if one is not None for k in one.values}
-    keys = [k for k in dict.fromkeys((*bands.judged, *ALSO_NEEDED, *DERIVED)) if k in known]
+    also = [k for pressure, needed in LINE_LOSSES.items() if pressure in plan.readings for k in (pressure, *needed)]
+    keys = [k for k in dict.fromkeys((*bands.judged, *also)) if k in known]
     return Calculated(make_table(ask, axes, plan.extras, found, keys, bands.shown), bands)
 
 
@@ -75,6 +78,7 @@ def _counted(plan: LivePlan) -> tuple[str, ...]:
 def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calculated | None) -> dict[str, Any]:
     """All that the script needs, as plain data."""
     from commission.records import records_folder
+    from commission.records.read import READING_KEYS
 
     instruments = plant.loaded.plant.instruments
     derived = [k for k in DERIVED if k not in plan.readings and (found is None or k in found.bands.judged)]
@@ -90,6 +94,7 @@ def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calcula
         "kinds": {k.value: kind_data(plant.display, k) for k in {NOMENCLATURE[k].kind for k in keys}},
         "conditions": list(plan.conditions),
         "readings": list(plan.readings),
+        "underConditions": [k for k in plan.readings if k not in READING_KEYS],
         "derived": derived,
         "instruments": {k: v for k, v in plan.instruments.items() if v},
         "until": {n: i.calibrated_until.isoformat() for n, i in instruments.items() if i.calibrated_until},
@@ -193,7 +198,7 @@ def _table(found: Calculated) -> dict[str, Any]:
         "extras": [{"key": k, "low": low, "rated": rated, "high": high} for k, (low, rated, high) in extras],
         "names": table.names,
         "regimes": "".join("-" if n < 0 else _REGIME_SIGNS[n] for n in table.regimes),
-        "series": [_series(table, name) for name in table.names],
+        "series": [_series(found, name) for name in table.names],
         "bands": [
             {k: [[_short(f) for f in factors], _short(error)] for k, (factors, error) in bands.logs.get(n, {}).items()}
             for n in table.names
@@ -205,23 +210,44 @@ def _table(found: Calculated) -> dict[str, Any]:
     }
 
 
-def _series(table: LiveTable, name: str) -> dict[str, Any] | None:
-    series = table.series.get(name)
+def _series(found: Calculated, name: str) -> dict[str, Any] | None:
+    series = found.table.series.get(name)
     if series is None:
         return None
+    steps = {k: _step(found, name, k) for k in series.rows}
     return {
         "centres": [_short(x) for x in series.centres],
         "halves": [_short(x) for x in series.halves],
         "terms": series.terms,
-        "rows": {k: _row(row) for k, row in series.rows.items()},
+        "rows": {k: _row(row, k in series.logs, steps[k]) for k, row in series.rows.items()},
         "logs": sorted(series.logs),
+        "left": {k: _left(found.table, name, k, step) for k, step in steps.items()},
+        "steps": {k: _short(step) for k, step in steps.items()},
         "errors": {k: round(e, 3) for k, e in series.errors.items() if e > 0.0005},
     }
 
 
-def _row(row: Sequence[float]) -> list[float]:
-    largest = max(map(abs, row))
-    digits = -math.floor(math.log10(largest * DIGITS)) if largest else 0
+def _step(found: Calculated, name: str, key: str) -> float:
+    """The step in which values of a key are written: a small share of its band, or of its size where it has none."""
+    middle = [0.5 * (low + high) for low, high in found.bands.ends]
+    band = found.bands.shown(name, key, middle)
+    series = found.table.series[name]
+    return STEP * band if band else 1e-6 * abs(series.at(key, series.centres)) + 1e-12
+
+
+def _left(table: LiveTable, name: str, key: str, step: float) -> list[int]:
+    """What the series leaves at the points of the grid of its regime, in steps; empty where that is next to nothing."""
+    own = table.names.index(name)
+    steps = [
+        round(float(x) / step) for x, n in zip(table.series[name].left[key], table.regimes, strict=True) if n == own
+    ]
+    return steps if max(map(abs, steps), default=0) > NOTHING else []
+
+
+def _row(row: Sequence[float], log: bool, step: float) -> list[float]:
+    """The factors to a small share of the step; those of a logarithm as a share of the value."""
+    fine = 1e-7 if log else 0.05 * step
+    digits = -math.floor(math.log10(fine))
     rounded = [round(x, digits) for x in row]
     return [int(x) if x == int(x) else x for x in rounded]
 

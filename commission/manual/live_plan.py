@@ -25,8 +25,11 @@ USUAL = (
     "suction_temperature", "discharge_temperature", "liquid_temperature", "power_input", "current",
 )  # fmt: skip
 """What is read of every system, where nothing tells that it is not."""
-ALSO_NEEDED = ("suction_pressure", "discharge_pressure", "liquid_temperature", "subcooling")
-"""Expected values that the line losses between gauge and exchanger are made of."""
+LINE_LOSSES = {
+    "suction_pressure": ("evaporating_temperature",),
+    "discharge_pressure": ("condensing_temperature", "liquid_temperature", "subcooling"),
+}
+"""Expected values that the difference between a gauge and its exchanger is made of."""
 HOW = {
     "evaporating_temperature": "saturation at the low-side gauge, as it is in the evaporator",
     "evaporator_temperature_difference": "source inlet minus evaporating",
@@ -42,8 +45,8 @@ HOW = {
     "cooling_cop": "capacity over power input",
     "heating_cop": "heat to the sink over power input",
 }
-_FLOW_RANGE = (0.8, 1.2)
-_HUMIDITY_RANGE = 0.2
+_FLOW_RANGE = (0.85, 1.15)
+_HUMIDITY_RANGE = 0.15
 
 
 @dataclass(frozen=True, slots=True)

@@ -285,7 +285,7 @@
     form.querySelectorAll("input[type=checkbox]").forEach(function (one) {
       if (one.checked) { unknown.push(one.getAttribute("data-field").replace("unknown-", "")); }
     });
-    var asked = rows(data.conditions), air = typed("v-barometric_pressure");
+    var asked = rows(data.conditions.concat(data.underConditions)), air = typed("v-barometric_pressure");
     if (air && barometer() !== data.barometer) { asked.push({ key: "barometric_pressure", value: plain(air) + " mbar a" }); }
     var remarks = typed("remarks");
     if (unknown.length) {
@@ -296,7 +296,7 @@
       title: "Day sheet", sinceStart: minutes("since-start"), sinceDefrost: minutes("since-defrost"),
       operator: { name: typed("operator"), firm: typed("operator-firm"), certificate: typed("operator-certificate") },
       witness: { name: typed("witness"), firm: typed("witness-firm") },
-      conditions: asked, readings: rows(data.readings), frozen: typed("frozen"), remarks: remarks
+      conditions: asked, readings: rows(data.readings.filter(function (key) { return data.underConditions.indexOf(key) < 0; })), frozen: typed("frozen"), remarks: remarks
     };
     function minutes(name) {
       var n = ticked("unknown-" + name) ? null : number(typed(name));

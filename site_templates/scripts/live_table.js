@@ -4,6 +4,15 @@
 var commissionLiveTable = function (data) {
   "use strict";
   var expected = data.expected;
+  (expected ? expected.series : []).forEach(function (series, n) { if (series) { spreadOut(series, n.toString(36)); } });
+
+  /* What a series leaves is carried for the points of its own regime; it is nothing at the others. */
+  function spreadOut(series, sign) {
+    Object.keys(series.left).forEach(function (key) {
+      var own = series.left[key], next = 0;
+      if (own.length) { series.left[key] = expected.regimes.split("").map(function (s) { return s === sign ? own[next++] : 0; }); }
+    });
+  }
 
   /* Saturation lines: even steps of the logarithm of pressure, straight between them. */
   function saturation(line, pressure) {
@@ -30,6 +39,11 @@ var commissionLiveTable = function (data) {
     if (corners.indexOf("-") >= 0) { return null; }
     var nearest = sign(cells.map(function (c) { return c.low + (c.share < 0.5 ? 0 : 1); }));
     return {
+      shares: cells.reduce(function (found, c) {
+        return [].concat.apply([], found.map(function (corner) {
+          return [[corner[0] * (c.last + 1) + c.low, corner[1] * (1 - c.share)], [corner[0] * (c.last + 1) + c.low + 1, corner[1] * c.share]];
+        }));
+      }, [[0, 1]]),
       first: parseInt(nearest, 36),
       corners: numbers(corners),
       around: numbers(around)
@@ -70,6 +84,12 @@ var commissionLiveTable = function (data) {
     return series.terms.map(function (term) {
       return term.reduce(function (product, power, n) { return product * polynomials[n][power]; }, 1);
     });
+  }
+
+  /* What a series leaves at the points of the grid, straight between them. */
+  function left(series, key, shares) {
+    var at = series.left[key];
+    return at.length ? shares.reduce(function (sum, s) { return sum + at[s[0]] * s[1]; }, 0) * series.steps[key] : 0;
   }
 
   /* One, the axes from -1/2 to 1/2, their squares, their products: what the bands are written in. */
@@ -122,8 +142,8 @@ var commissionLiveTable = function (data) {
     var by = regimes.corners.map(function (r) { return { r: r, series: expected.series[r], basis: basis(expected.series[r], point) }; });
     Object.keys(expected.series[regimes.first].rows).forEach(function (key) {
       var found = by.filter(function (one) { return one.series.rows[key]; }).map(function (one) {
-        var value = dot(one.series.rows[key], one.basis);
-        return { r: one.r, value: one.series.logs.indexOf(key) >= 0 ? Math.exp(value) : value, miss: one.series.errors[key] || 0 };
+        var sum = dot(one.series.rows[key], one.basis), value = one.series.logs.indexOf(key) >= 0 ? Math.exp(sum) : sum;
+        return { r: one.r, value: value + left(one.series, key, regimes.shares), miss: one.series.errors[key] || 0 };
       });
       var own = found.filter(function (one) { return one.r === regimes.first; })[0];
       var bands = regimes.around.map(function (r) { return uncertainty(r, key, terms, missing); }).filter(Boolean);
