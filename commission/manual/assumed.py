@@ -10,12 +10,6 @@ from commission.manual.gather import SystemData, far_point
 from commission.manual.showing import label_of, spread_text
 from commission.quantities import NOMENCLATURE, Display
 
-_LEADING = (
-    "suction_pressure", "discharge_pressure", "discharge_temperature", "evaporating_temperature",
-    "condensing_temperature", "superheat", "subcooling", "power_input", "cooling_capacity", "heating_capacity",
-)  # fmt: skip
-"""The values that decide which assumption matters most: what is read and what is promised."""
-
 
 @dataclass(frozen=True, slots=True)
 class ShownAssumption:
@@ -33,26 +27,13 @@ class ShownAssumption:
     share: float | None
 
 
-def shares(parts: Mapping[str, Mapping[str, float]]) -> Mapping[str, float]:
-    """The mean share of each cause in the variance of the leading values, 0 to 1."""
-    totals: dict[str, float] = {}
-    counted = 0
-    for key in _LEADING:
-        squares = {cause: part**2 for cause, part in parts.get(key, {}).items()}
-        whole = sum(squares.values())
-        if whole <= 0:
-            continue
-        counted += 1
-        for cause, square in squares.items():
-            totals[cause] = totals.get(cause, 0.0) + square / whole
-    return {cause: total / counted for cause, total in totals.items()} if counted else {}
-
-
 def _effects(changes: Mapping[str, float], values: Mapping[str, float], display: Display) -> tuple[str, ...]:
     """The largest relative effects, in words, at most four."""
+    from commission.prediction.worth import LEADING
+
     sized = []
     for key, change in changes.items():
-        if key not in _LEADING or change == 0:
+        if key not in LEADING or change == 0:
             continue
         kind = NOMENCLATURE[key].kind
         text = spread_text(display, kind, change)
@@ -63,9 +44,11 @@ def _effects(changes: Mapping[str, float], values: Mapping[str, float], display:
 
 
 def shown_assumptions(data: SystemData, display: Display) -> tuple[ShownAssumption, ...]:
-    """The assumptions in use, the one most worth replacing first."""
+    """The assumptions in use, the one most worth replacing first; their effects are those at the far point."""
+    from commission.prediction.worth import shares
+
     point = far_point(data.grid, data.rated) if data.rated is not None else None
-    share = shares(point.parts) if point is not None else {}
+    share = shares(data.rated.parts) if data.rated is not None else {}
     values = {k: e.value for k, e in point.expected.items()} if point is not None else {}
     rows = [_row(a, share.get(a.key), data.effects.get(a.key, {}), values, display) for a in data.assumptions.values()]
     return tuple(sorted(rows, key=lambda r: -(r.share or 0.0)))

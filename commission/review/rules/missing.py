@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 
 from commission.quantities import NOMENCLATURE, Kind
 from commission.review.facts import PlantFacts, SystemFacts
@@ -13,6 +13,7 @@ HEADLINE = (
     "suction_pressure", "discharge_pressure", "discharge_temperature", "cooling_capacity", "heating_capacity",
     "power_input",
 )  # fmt: skip
+"""What is said of the assumption that is most worth replacing: how far it moves these."""
 
 TESTED_ON_SITE = (
     "nameplate.allowable_pressure_low",
@@ -23,19 +24,19 @@ TESTED_ON_SITE = (
 
 
 def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
-    """The assumption that makes most of the uncertainty of the headline readings at the design condition.
+    """The assumption that makes most of the uncertainty of the leading values at the design condition.
 
-    Source: JCGM 100: share of each cause in the variance, added over the headline readings.
+    Source: JCGM 100: share of each cause in the variance, mean over the leading values (`prediction.worth`).
     """
+    from commission.prediction.worth import most_worth
+
     outlook = facts.outlooks.get("design")
     if facts.model is None or outlook is None or outlook.prediction is None:
         return
-    parts = {key: part for key, part in outlook.prediction.parts.items() if key in HEADLINE}
-    shares = _shares(parts)
-    known = {key: share for key, share in shares.items() if key in facts.model.assumptions}
-    if not known:
+    key = most_worth(outlook.prediction.parts, facts.model.assumptions)
+    if key is None:
         return
-    key = max(known, key=lambda k: known[k])
+    parts = {k: part for k, part in outlook.prediction.parts.items() if k in HEADLINE}
     assumption = facts.model.assumptions[key]
     kind = assumption.kind
     show = facts.plant.display
@@ -58,17 +59,6 @@ def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
         assumption.source,
         assumption.mark,
     )
-
-
-def _shares(parts: Mapping[str, Mapping[str, float]]) -> dict[str, float]:
-    """For each cause the sum, over quantities, of its share in the variance."""
-    shares: dict[str, float] = {}
-    for part in parts.values():
-        total = sum(value**2 for value in part.values())
-        for cause, value in part.items():
-            if total > 0:
-                shares[cause] = shares.get(cause, 0.0) + value**2 / total
-    return shares
 
 
 def of_the_system(facts: SystemFacts) -> Iterator[Remark]:
