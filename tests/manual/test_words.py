@@ -8,7 +8,6 @@ from pathlib import Path
 import pytest
 
 from commission.manual import search
-from commission.manual.assumed import shares
 from commission.manual.book import Book, Sheet, slug, slugs
 from commission.manual.facts import stated_number
 from commission.manual.figures import Chart, Line, by_night, draw_chart
@@ -123,12 +122,6 @@ def test_saturation_temperatures_are_whole_degrees_of_the_site() -> None:
     fahrenheit = [round(t * 1.8 - 459.67, 6) for t in table_temperatures(200.0, 369.0, US)]
     assert fahrenheit[:2] == [-40.0, -38.0]
     assert table_temperatures(250.0, 260.0, METRIC)[0] == pytest.approx(250.15)
-
-
-def test_share_of_an_assumption_is_its_share_of_the_variance() -> None:
-    """Two causes of 3 and 4 share a variance of 25 as 9 and 16; a value without uncertainty does not count."""
-    found = shares({"suction_pressure": {"a": 3.0, "b": -4.0}, "superheat": {"a": 0.0}})
-    assert found == {"a": pytest.approx(0.36), "b": pytest.approx(0.64)}
 
 
 def test_figures_are_the_same_to_the_byte_and_have_a_dark_twin() -> None:
