@@ -6,6 +6,7 @@ import itertools
 import logging
 import posixpath
 import re
+import shutil
 from collections.abc import Callable, Iterable, Mapping
 from pathlib import Path
 from typing import Any
@@ -20,6 +21,7 @@ from mkdocs.structure.files import File, Files
 from mkdocs.structure.nav import Navigation
 from mkdocs.structure.pages import Page
 from mkdocs.structure.toc import TableOfContents
+from mkdocs.utils import is_markdown_file
 
 from commission.manual import search
 from commission.manual.book import Book, OwnerFile, Sheet
@@ -78,6 +80,8 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
         for path, content in self.texts.items():
             files.append(File.generated(config, path, content=content))
         for item in self.owner.values():
+            if _left_as_it_is(item):
+                continue
             file = File.generated(config, item.site_path, abs_src_path=str(item.source))
             if item.sheet is not None:
                 self.sheets[file.src_uri] = item.sheet
@@ -114,6 +118,11 @@ class _Manual(BasePlugin):  # type: ignore[type-arg,no-untyped-call]  # MkDocs l
         context["root"] = posixpath.relpath(".", posixpath.dirname(sheet.id) or ".")
         context.update(self.frame(sheet))
         return context
+
+
+def _left_as_it_is(item: OwnerFile) -> bool:
+    """Evidence of a visit in Markdown: a copy with its digest, not a page of the manual."""
+    return item.sheet is None and is_markdown_file(item.site_path)
 
 
 _TAGS = {
@@ -231,6 +240,10 @@ def write_site(
     finally:
         log.removeHandler(collect)
         log.propagate, log.level = before
+    for item in filter(_left_as_it_is, plugin.owner.values()):
+        target = out / item.site_path
+        target.parent.mkdir(parents=True, exist_ok=True)
+        shutil.copyfile(item.source, target)
     for name in ("sitemap.xml", "sitemap.xml.gz"):
         (out / name).unlink(missing_ok=True)
     (out / "search-index.js").write_text(search.index_script(plugin.entries), encoding="utf-8")
