@@ -63,6 +63,10 @@ def _visit(
     )
 
 
+REPORT = "electrician.md"
+"""Evidence filed with the first visit."""
+
+
 def file_visits(folder: Path) -> None:
     """Files a trim that raises an open item, an accepted test by a frozen sheet, and a later visit that deviates.
 
@@ -84,6 +88,7 @@ def file_visits(folder: Path) -> None:
     }
     sheet = file_sheet(loaded, make_sheet(loaded, model, ranges, title="Agreed test"), "agreed")
     item = 'open_items:\n  - {what: "insulate the suction line", who: contractor, due: 2026-05-10}\n'
+    item += f"attachments: [{REPORT}]\n"
     accepted = "sheet: sheets/agreed.yaml\nreservations: [the door gasket is replaced within four weeks]\n"
     assert sheet.name == "agreed.yaml"
     visits = [
@@ -96,6 +101,7 @@ def file_visits(folder: Path) -> None:
     ]  # fmt: skip
     handed_in = folder.parent / "handed-in"
     handed_in.mkdir()
+    (handed_in / REPORT).write_text("# Report\n", encoding="utf-8")
     for n, visit in enumerate(visits):
         path = handed_in / f"visit-{n}.yaml"
         path.write_text(visit, encoding="utf-8")

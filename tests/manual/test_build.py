@@ -12,7 +12,7 @@ from commission.description import DescriptionError
 from commission.errors import InputError
 from commission.manual import BuildResult, FolderStore, build, templates_folder
 from commission.manual.store import kept
-from tests.manual.plants import copy_plant, write_tiny_plant
+from tests.manual.plants import REPORT, copy_plant, write_tiny_plant
 
 
 def _digests(folder: Path) -> dict[str, str]:
@@ -38,6 +38,13 @@ def test_first_page_and_pages_of_each_system_are_there(built: BuildResult, site:
     for page in ("emergency-card", "open-items", "findings", "instruments", "documents", "methods", "search"):
         assert (site / f"{page}.html").is_file(), page
     assert len([p for p in site.rglob("*.html") if p.parent.name != "single"]) == built.pages
+
+
+def test_evidence_in_markdown_is_copied_as_it_is(site: Path) -> None:
+    """A filed attachment keeps its digest; it is no page of the manual."""
+    (copied,) = (site / "records" / "attachments").rglob(REPORT)
+    assert copied.read_text(encoding="utf-8") == "# Report\n"
+    assert not copied.with_suffix(".html").exists()
 
 
 def test_nothing_that_changes_by_date_is_written(site: Path) -> None:
