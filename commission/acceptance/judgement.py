@@ -19,7 +19,7 @@ from commission.acceptance.guarantee import Carried, Terms, boundary_differs, ca
 from commission.acceptance.impossible import Impossible
 from commission.acceptance.instruments import Reading
 from commission.acceptance.routes import Refusal, RouteResult
-from commission.acceptance.steadiness import Steadiness, steadiness
+from commission.acceptance.steadiness import Steadiness, WholeCycles, steadiness
 from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Explained
 
@@ -111,18 +111,23 @@ def judge(
     since_defrost: float | None = None,
     limits: str = "site",
     upsets: Collection[str] = (),
+    cycles: WholeCycles | None = None,
 ) -> Judgement:
     """Judge the readings of one visit.
 
     In *trim* there are deviations only. In a *test* each guarantee gets one verdict: from the frozen sheet where there
     is one, otherwise from the description as it stands. Times in s; `limits` names a set of steadiness limits; `on` is
-    the day, for the calibrations. Readings: SI, pressures absolute.
+    the day, for the calibrations. `cycles`: the readings are means over whole cycles, one sample for each. Readings:
+    SI, pressures absolute.
 
     Raises:
         InputError: a condition that this system does not have.
     """
     asked, read = list(conditions), list(readings)
     system = loaded.system(model.system_id)
+    through_defrosts = cycles is not None and cycles.by == "defrost"
+    if through_defrosts:
+        upsets = (*upsets, "defrost in the means")
     found = evaluate(loaded, model, asked, read, on=on, sheet=sheet, upsets=upsets)
     liquid = frozenset(
         side for side, m in (("source", system.heat_source), ("sink", system.heat_sink)) if m.medium != "air"
@@ -130,12 +135,17 @@ def judge(
     chosen = sheet.steadiness if sheet is not None else limits
     still = steadiness(
         [*asked, *read], since_start, since_defrost, limits=chosen, liquid_sides=liquid,
-        defrosts=system.evaporator.defrost is not None,
+        defrosts=system.evaporator.defrost is not None, cycles=cycles,
     )  # fmt: skip
     verdicts: list[GuaranteeVerdict] = []
     if mode == "test":
         verdicts = _verdicts(loaded, model, found, sheet, withheld_by(found.impossible, still))
     warnings = list(found.warnings)
+    if through_defrosts and not any(p.frost_included for p in system.rated_points):
+        warnings.append(
+            "powers and capacities are means with defrosts in them, and no rated point is said to count its defrosts "
+            "(frost_included): what is expected holds between defrosts and is more"
+        )
     if sheet is not None and sheet.system != model.system_id:
         warnings.append(f"the test sheet is one of {sheet.system}, not of {model.system_id}")
     if mode == "test" and verdicts and sheet is None:

@@ -32,6 +32,7 @@ UPSETS: Mapping[str, str] = {
     "vapour injection": "vapour is injected into the compression: a second flow enters the balance",
     "hot gas bypass": "hot gas is bypassed: part of the compressor's flow never sees the evaporator",
     "oil cooling": "oil takes heat out of the compressor: its power does not all go into the gas",
+    "defrost in the means": "the readings are means with defrosts in them: they are no states of one moment",
     "water-cooled compressor": "a water jacket takes heat out: the power does not all go into the gas",
 }
 """What makes the compressor heat balance wrong, and why."""

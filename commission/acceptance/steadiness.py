@@ -7,11 +7,12 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cache
 from importlib.resources import files
-from typing import Any
+from typing import Any, Literal
 
 from commission.acceptance.instruments import Reading
 from commission.quantities import NOMENCLATURE, Kind
 
+CYCLES = "whole_cycles"
 _MEDIUM = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "heat_sink_inlet_temperature",
            "heat_sink_outlet_temperature")  # fmt: skip
 
@@ -20,7 +21,8 @@ _MEDIUM = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "h
 class Steadiness:
     """One check of steadiness. `steady` is None where nothing shows it either way; `text` says it to a person.
 
-    `key` is a nomenclature key, `since_start` or `since_defrost`; `largest` and `limit` are in the SI unit of `kind`.
+    `key` is a nomenclature key, `since_start`, `since_defrost` or `whole_cycles`; `largest` and `limit` are in
+    the SI unit of `kind`.
     """
 
     key: str
@@ -29,6 +31,16 @@ class Steadiness:
     kind: Kind
     steady: bool | None
     text: str
+
+
+@dataclass(frozen=True, slots=True)
+class WholeCycles:
+    """Readings that are means over whole cycles: `count` of them in `seconds`, each from one start of the compressor,
+    or one defrost, to the next (`by`)."""
+
+    count: int
+    seconds: float
+    by: Literal["start", "defrost"]
 
 
 @cache
@@ -49,18 +61,36 @@ def steadiness(
     limits: str = "site",
     liquid_sides: frozenset[str] = frozenset(),
     defrosts: bool = False,
+    cycles: WholeCycles | None = None,
 ) -> tuple[Steadiness, ...]:
     """All checks of one visit. Times in s; `liquid_sides` holds `source` and `sink` where the medium is a liquid.
 
-    `defrosts`: whether the plant has a defrost at all, so that the time since the last one must be known.
+    `defrosts`: whether the plant has a defrost at all, so that the time since the last one must be known. With `cycles`
+    the readings are means over whole cycles, one sample for each: then enough cycles are wanted, and that they are
+    alike, instead of a time since the last start.
     """
     chosen = library()[limits]
-    checks = list(_times(chosen, since_start, since_defrost, defrosts))
+    if cycles is not None:
+        checks = [_cycles(chosen, cycles)]
+    else:
+        checks = list(_times(chosen, since_start, since_defrost, defrosts))
     for reading in readings:
         one = _spread(reading, chosen, liquid_sides)
         if one is not None:
             checks.append(one)
     return tuple(checks)
+
+
+def _cycles(chosen: Mapping[str, Any], cycles: WholeCycles) -> Steadiness:
+    least, hours = int(chosen["cycles"]), float(chosen["cycles_time"]) / 3600.0
+    steady = cycles.count >= least or cycles.seconds >= 3600.0 * hours
+    number = f"{cycles.count} whole cycle{'' if cycles.count == 1 else 's'}"
+    over = "from start to start, while it ran" if cycles.by == "start" else "from defrost to defrost"
+    return Steadiness(
+        CYCLES, float(cycles.count), float(least), Kind.NUMBER, steady,
+        f"{'read' if steady else 'too short:'} as means over {number} ({cycles.seconds / 60.0:.0f} min), {over}; at "
+        f"least {least} cycles or {hours:.0f} hours are wanted ({chosen['title']})",
+    )  # fmt: skip
 
 
 def _times(
@@ -77,9 +107,9 @@ def _times(
         else:
             steady = seconds >= limit
             said = "read" if steady else "read too early:"
-            yield Steadiness(
-                key, seconds, limit, Kind.DURATION, steady, f"{said} {seconds / 60:.0f} min after {what}; {least}"
-            )
+            hint = "" if steady else "; where it never runs so long, take means over whole cycles from a logger"
+            text = f"{said} {seconds / 60:.0f} min after {what}; {least}{hint}"
+            yield Steadiness(key, seconds, limit, Kind.DURATION, steady, text)
 
 
 def _spread(reading: Reading, chosen: Mapping[str, Any], liquid_sides: frozenset[str]) -> Steadiness | None:

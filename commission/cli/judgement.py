@@ -10,12 +10,14 @@ from commission.records import guarantee_sentence
 
 if TYPE_CHECKING:
     from commission.acceptance import Judgement
+    from commission.acceptance.closure import Closure
     from commission.description import LoadedPlant
     from commission.records import Record
 
 
 def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     """The judgement for a terminal. Uncertainties are expanded, 95 %."""
+    from commission.acceptance.steadiness import CYCLES
     from commission.manual.page_display import PageDisplay
 
     display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
@@ -25,7 +27,8 @@ def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
         lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, measured.value)}")
     lines += ["", *_table(judgement, display)]
     lines += _listed("cannot be", (i.text for i in judgement.impossible))
-    lines += _listed("steadiness", (s.text for s in judgement.steadiness if s.steady is not True))
+    lines += _listed("steadiness", (s.text for s in judgement.steadiness if s.steady is not True or s.key == CYCLES))
+    lines += _listed("two routes", (_closure(c, display) for c in judgement.closures))
     lines += _listed(
         "route refused", (f"{NOMENCLATURE[r.key].label} by {r.route}: {r.reason}" for r in judgement.refusals)
     )
@@ -35,14 +38,25 @@ def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     return "\n".join(lines)
 
 
+def _closure(c: Closure, display: Display) -> str:
+    """Two routes held against each other."""
+    kind = NOMENCLATURE["cooling_capacity" if c.quantity == "first law" else c.quantity].kind
+    what = "first law" if c.quantity == "first law" else NOMENCLATURE[c.quantity].label.lower()
+    spread = f"{display.spread(c.budget.expanded(), kind)} {display.spread_unit(kind)}"
+    size = f"{display.spread(c.difference, kind)} ± {spread}"
+    word = "they do not agree, one of them is wrong" if c.significant else "they agree"
+    return f"{what}, {c.first} and {c.second}, differ by {size}: {word}"
+
+
 def not_compared(record: Record, loaded: LoadedPlant) -> list[str]:
     """Sentences on values that answer checklist items but stand under no reading, so that nothing judges them."""
     from commission.checklists import stages
 
-    quantity = {item.id: item.quantity for stage in stages(loaded, record.system) for item in stage.items}
+    items = (item for stage in stages(loaded, record.system) for item in stage.items)
+    quantity = {item.id: item.quantity for item in items if item.rest_at is None}
     written = {*record.readings, *record.conditions}
     return [
-        f"the answer to {answer.item} is not compared; write it under readings as {quantity[answer.item]} too"
+        f"the answer to {answer.item} is not compared; write it under readings as {quantity[answer.item]}, once"
         for answer in record.answers.values()
         if answer.value is not None and quantity.get(answer.item) not in {None, *written}
     ]

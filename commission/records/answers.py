@@ -1,8 +1,11 @@
-"""Answers to checklist items: each must belong to an item of the stage and be of the sort that the item asks for."""
+"""Answers to checklist items: each must belong to an item of the stage and be of the sort that the item asks for.
+
+What is read is written once: a reading answers the item of the stage that asks for its quantity.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from commission.description import KeyPath
@@ -10,7 +13,8 @@ from commission.errors import nearest
 from commission.quantities import NOMENCLATURE, Kind, find_unit
 from commission.records.model import Answer
 from commission.records.readings import ReadingsReader
-from commission.records.record import CheckedAnswer
+from commission.records.record import CheckedAnswer, SiteReading
+from commission.records.together import beyond, judge_together
 
 if TYPE_CHECKING:
     from commission.checklists import Item
@@ -25,11 +29,13 @@ def check_answers(
     stage: str,
     items: Mapping[str, Sequence[Item]],
     files: Sequence[str],
+    read: Mapping[str, SiteReading],
 ) -> tuple[dict[str, CheckedAnswer], tuple[str, ...]]:
     """The answers that fit, and the ids of items of `stage` without one; slips are kept by `reader`.
 
     `items` are the items of all stages by stage id: an answer to an item of another stage is allowed, since one
-    visit often settles what an earlier one left. `files` are those that are filed with the record.
+    visit often settles what an earlier one left. `files` are those that are filed with the record; `read` are its
+    conditions and readings by quantity.
     """
     by_id = {item.id: item for of_stage in items.values() for item in of_stage}
     answers: dict[str, CheckedAnswer] = {}
@@ -43,8 +49,35 @@ def check_answers(
         checked = _check(reader, path, item, answer, files)
         if checked is not None:
             answers[identity] = checked
-    unanswered = tuple(item.id for item in items.get(stage, ()) if item.id not in written)
+    of_stage = items.get(stage, ())
+    by_reading = answered_by_reading(of_stage, read)
+    for item in of_stage:
+        if item.id in by_reading and item.id not in written and item.quantity is not None:
+            answers[item.id] = _as_read(item, read[item.quantity])
+    judge_together(reader, answers, by_id)
+    unanswered = tuple(item.id for item in of_stage if item.id not in written and item.id not in by_reading)
     return answers, unanswered
+
+
+def answered_by_reading(items: Sequence[Item], read: Collection[str]) -> frozenset[str]:
+    """The ids of a stage's items that a reading answers: the only item of the stage that asks for that quantity.
+
+    Where several ask for it they ask at different moments (a pressure at rest and one while running, say), and a value
+    with the plant at rest is never one that is read while it runs: those are answered one by one.
+    """
+    asked = [i.quantity for i in items if i.answer == "value"]
+    return frozenset(
+        i.id
+        for i in items
+        if i.answer == "value" and i.quantity in read and asked.count(i.quantity) == 1 and i.rest_at is None
+    )
+
+
+def _as_read(item: Item, reading: SiteReading) -> CheckedAnswer:
+    if _outside(item, reading.value):
+        reason = reading.remark or "it was read outside what it must be"
+        return CheckedAnswer(item.id, reading.as_written, "failed", reading.value, reason)
+    return CheckedAnswer(item.id, reading.as_written, "done", reading.value, None, reading.remark)
 
 
 def _check(
@@ -95,8 +128,4 @@ def _outside(item: Item, value: float | None) -> bool:
     The checklist is read without a prediction here, so bounds of expected readings are not known and decide nothing:
     they depend on the condition of the visit and on the instrument, which the judgement of the readings takes in.
     """
-    if value is None or item.must_read is None:
-        return False
-    low, high = item.must_read.low, item.must_read.high
-    slack = 1e-9 * abs(value)
-    return (low is not None and value < low - slack) or (high is not None and value > high + slack)
+    return value is not None and item.must_read is not None and beyond(item.must_read, value)

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant
 from commission.quantities import NOMENCLATURE, Display, pretty
+from commission.records.answers import answered_by_reading
 from commission.records.read import READING_KEYS, known_stages
 
 if TYPE_CHECKING:
@@ -31,7 +32,10 @@ people:
 _WET, _HUMIDITY = "heat_source_wet_bulb", "heat_source_relative_humidity"
 
 
-_READINGS = "readings:  # compared with what is expected; the answers below tick off the checklist"
+_READINGS = "readings:  # compared with what is expected; a reading answers its item of the checklist too"
+_BY_PHASE: Mapping[str, str] = {"current": "[4.1 A, 4.0 A, 4.2 A]", "voltage": "[401 V, 398 V, 400 V]"}
+"""Read in every phase of the supply, where it has three: their unbalance is looked at too."""
+_USUAL_VOLTAGE = 230.0
 
 
 def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel | None = None) -> str:
@@ -47,7 +51,7 @@ def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel
     name = loaded.system(system).name or system
     items = known_stages(loaded, system, stage)
     lines = _HEAD.format(name=" ".join(name.split()), system=system, stage=stage).splitlines()
-    asked = _asked(loaded, system, model)
+    asked = _with_voltage(loaded, system, _asked(loaded, system, model))
     display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
     axes = [k for k in NOMENCLATURE if model is not None and k in model.condition_axes]
     axes = axes or ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
@@ -55,10 +59,14 @@ def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel
     if _WET in named and _HUMIDITY not in named:
         axes = [_WET if k == _HUMIDITY else k for k in axes]
         asked[_WET] = named[_WET]
-    lines += ["conditions:", *_lines([(k, asked.get(k)) for k in axes], display)]
+    three = loaded.system(system).nameplate.phases != "1"
     readings = [(k, i) for k, i in asked.items() if k in READING_KEYS and k not in axes]
-    lines += [_READINGS if readings else "readings: {}", *_lines(readings, display)]
-    lines += ["answers:" if items else "answers: {}", *_answers(items)]
+    read = answered_by_reading(items, {*axes, *(k for k, _ in readings)})
+    answered = {i.quantity: i for i in items if i.id in read}
+    lines += ["conditions:", *_lines([(k, asked.get(k)) for k in axes], display, three, answered)]
+    lines += [_READINGS if readings else "readings: {}", *_lines(readings, display, three, answered)]
+    left = [item for item in items if item.id not in read]
+    lines += ["answers:" if left else "answers: {}", *_answers(left)]
     return "\n".join(lines) + "\n"
 
 
@@ -83,12 +91,32 @@ def _asked(loaded: LoadedPlant, system: str, model: SystemModel | None) -> dict[
     return {k: chosen[k] for k in NOMENCLATURE if chosen.get(k) is not None}
 
 
-def _lines(asked: Sequence[tuple[str, str | None]], display: Display) -> Iterator[str]:
+def _with_voltage(loaded: LoadedPlant, system: str, asked: dict[str, str | None]) -> dict[str, str | None]:
+    """The voltage wherever the current is asked: an unbalance of currents says little without that of the supply."""
+    from commission.acceptance.choosing import choose_instrument
+
+    if "current" not in asked or "voltage" in asked:
+        return asked
+    one, site = loaded.system(system), loaded.barometric_pressure
+    meter = choose_instrument(
+        "voltage", one.nameplate.voltage or _USUAL_VOLTAGE, loaded.plant.instruments, one.measured_with, site
+    )
+    found = {**asked, "voltage": meter}
+    return {k: found[k] for k in NOMENCLATURE if k in found}
+
+
+def _lines(
+    asked: Sequence[tuple[str, str | None]], display: Display, three: bool, answered: Mapping[str | None, Item]
+) -> Iterator[str]:
     for key, instrument in asked:
         quantity = NOMENCLATURE[key]
         unit = pretty(display.unit_and_digits(quantity.kind)[0])
         named = f", instrument: {instrument}" if instrument else ""
-        yield f"  {key}: {{value: {named}, where: }}  # {unit}; {quantity.definition}"
+        value, how = "value: ", ""
+        if three and key in _BY_PHASE:
+            value, how = "phases: []", f", one for each phase, such as {_BY_PHASE[key]}"
+        item = f"; answers {answered[key].id}" if key in answered else ""
+        yield f"  {key}: {{{value}{named}, where: }}  # {unit}{how}; {quantity.definition}{item}"
 
 
 def _answers(items: Sequence[Item]) -> Iterator[str]:

@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from commission.acceptance.instruments import Reading
     from commission.acceptance.judgement import Judgement
     from commission.acceptance.sheet import TestSheet
+    from commission.acceptance.steadiness import WholeCycles
     from commission.prediction import SystemModel
 
 SHEETS = "sheets"
@@ -70,7 +71,18 @@ def judged_by(
         since_start=record.file.since_start,
         since_defrost=record.file.since_defrost,
         upsets=record.file.upsets,
+        cycles=cycles_of(record),
     )
+
+
+def cycles_of(record: Record) -> WholeCycles | None:
+    """The whole cycles over which a record was read, None where it was read at one steady moment."""
+    from commission.acceptance.steadiness import WholeCycles
+
+    cycles, ended = record.file.cycles, record.file.ended
+    if cycles is None or ended is None:
+        return None
+    return WholeCycles(cycles.count, (ended - record.started).total_seconds(), cycles.by)
 
 
 def judge_or_reason(

@@ -12,7 +12,10 @@ from commission.description.fields import Date, Duration, YesNo
 from commission.description.model import Part
 
 Mode = Literal["trim", "test"]
-Upset = Literal["liquid injection", "vapour injection", "hot gas bypass", "oil cooling", "water-cooled compressor"]
+Upset = Literal[
+    "liquid injection", "vapour injection", "hot gas bypass", "oil cooling", "defrost in the means",
+    "water-cooled compressor",
+]  # fmt: skip
 """The words of `commission.acceptance.routes.UPSETS`, which a test holds together."""
 
 
@@ -75,6 +78,16 @@ class Answer(Part):
     by: str | None = Field(None, description="who did it, where it was not the operator")
 
 
+class CyclesRead(Part):
+    """The readings are means over whole cycles, one sample for each, because no single moment speaks for the plant."""
+
+    count: int = Field(ge=1, description="how many whole cycles there are between `started` and `ended`")
+    by: Literal["start", "defrost"] = Field(
+        description="start: from one start of the compressor to the next, means while it runs; defrost: from one "
+        "defrost to the next, powers, flows and media with the defrost, refrigerant without"
+    )
+
+
 class RaisedItem(Part):
     """Something that is left to do, raised by hand."""
 
@@ -110,6 +123,7 @@ class RecordFile(Part):
     ended: Moment | None = Field(None, description="date, time and zone at which reading ended")
     since_start: Duration | None = Field(None, description="running time since the compressor last started")
     since_defrost: Duration | None = Field(None, description="time since the last defrost ended")
+    cycles: CyclesRead | None = Field(None, description="where the readings are means over whole cycles; wants `ended`")
     upsets: tuple[Upset, ...] = Field((), description="what ran that upsets the heat balance of the compressor")
     people: dict[str, Visitor] = Field(min_length=1, description="roles (operator, witness, ...) and people")
     conditions: dict[str, Annotated[Measured, BeforeValidator(_value_alone)]] = Field(

@@ -88,7 +88,10 @@ def check_record(
     conditions = reader.section("conditions", rest, CONDITION_KEYS)
     readings = reader.section("readings", file.readings, READING_KEYS)
     items = _items(loaded, file, reader) if system is not None and by_checklist else {}
-    answers, unanswered = check_answers(reader, file.answers, file.stage, items, _files(file)) if items else ({}, ())
+    read = {**conditions, **readings}
+    answers, unanswered = (
+        check_answers(reader, file.answers, file.stage, items, _files(file), read) if items else ({}, ())
+    )
     _sense(file, reader)
     if reader.problems:
         raise RecordError(*bounded(reader.problems))
@@ -135,6 +138,10 @@ def _sense(file: RecordFile, reader: ReadingsReader) -> None:
     """What no single field can see."""
     if file.ended is not None and file.ended < file.started:
         reader.problem(("ended",), "the visit ends before it started")
+    if file.cycles is not None and file.ended is None:
+        reader.problem(
+            ("cycles",), "say when the last of them ended", allowed="ended: date, time and zone", at_key=True
+        )
     if file.corrects and not file.why_corrected:
         reader.problem(("corrects",), "a correction says why", allowed="why_corrected: ...")
     if file.why_corrected and not file.corrects:
@@ -173,7 +180,7 @@ def _warnings(file: RecordFile, readings: Mapping[str, Any], unanswered: tuple[s
     if file.mode == "test" and unanswered:
         noun = "item of this stage has" if len(unanswered) == 1 else "items of this stage have"
         found.append(f"{len(unanswered)} {noun} no answer: {', '.join(unanswered)}")
-    if readings and file.since_start is None:
+    if readings and file.since_start is None and file.cycles is None:
         found.append("the running time since the last start is not written: nobody can say later that it was steady")
     return found
 

@@ -9,6 +9,7 @@ from pathlib import Path
 
 import pytest
 
+from commission.description import read_yaml
 from tests.conftest import Run
 
 TESTED = "2026-05-14-1320-cold-room-performance.yaml"
@@ -159,3 +160,33 @@ def test_values_that_answer_items_but_are_no_readings_are_named(commission: Run,
         "mind: the answer to performance.suction-pressure is not compared; "
         "write it under readings as suction_pressure, once"
     ]
+
+
+LOGGER = """\
+logger: test logger
+delimiter: comma
+decimal: point
+time: {column: time, form: 'YYYY-MM-DD hh:mm:ss', zone: Europe/London}
+columns: {power: {quantity: power_input, unit: kW, instrument: power meter}}
+"""
+
+
+def test_whole_cycles_come_from_a_log(commission: Run, example_folder: Path, tmp_path: Path) -> None:
+    """With --cycles the blank record holds the means over the latest three whole cycles; less than one is refused."""
+    (tmp_path / "mapping.yaml").write_text(LOGGER, encoding="utf-8")
+    rows = [
+        f"2026-05-14 {12 + n // 60:02d}:{n % 60:02d}:00,{1.5 if n >= 5 and (n - 5) % 30 < 20 else 0.04}"
+        for n in range(140)
+    ]
+    form = ("--form", "performance", "--system", "cold-room", "--mapping", tmp_path / "mapping.yaml", "--cycles")
+    log = tmp_path / "log.csv"
+    log.write_text("time,power\n" + "\n".join(rows), encoding="utf-8")
+    done = commission("record", example_folder, *form, "--log", log)
+    assert done.returncode == 0, done.stderr
+    assert read_yaml(done.stdout).data["cycles"] == {"count": "3", "by": "start"}
+    assert "66.7 %" in done.stdout
+    assert done.stdout.count("1.5 kW") == 3
+    log.write_text("time,power\n" + "\n".join(rows[:30]), encoding="utf-8")
+    done = commission("record", example_folder, *form, "--log", log)
+    assert done.returncode == 2
+    assert "less than one whole cycle" in done.stderr

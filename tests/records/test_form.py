@@ -87,3 +87,30 @@ def test_what_is_left_open_is_said_plainly(tmp_path: Path, loaded: LoadedPlant, 
     name = next(p for p in caught.value.problems if p.path == "people.operator.name")
     assert name.message == "nothing is written here"
     assert "written:" not in str(name)
+
+
+def test_what_is_read_is_asked_once(loaded: LoadedPlant, model: SystemModel) -> None:
+    """An item that asks for a reading of the form is not asked again below, and the reading says which it answers."""
+    text = record_form(loaded, "store", "visit", model)
+    assert "visit.suction: {" not in text
+    assert re.search(r"  suction_pressure: .*; answers visit\.suction\n", text)
+    assert "visit.setting: {answer: " in text
+
+
+def test_currents_and_voltages_are_asked_by_phase(folder: Path) -> None:
+    """Both are asked together, for each phase unless the nameplate says that there is only one."""
+    plant = folder / "plant.yaml"
+    text = plant.read_text(encoding="utf-8")
+    text = text.replace("measured_with: {", "measured_with: {current: clamp meter, ")
+    text = text.replace("systems:\n", "  clamp meter: {measures: current, accuracy: {of_reading: 2 %}}\nsystems:\n")
+    plant.write_text(text, encoding="utf-8")
+    loaded = load_plant(folder)
+    form = record_form(loaded, "store", "visit")
+    assert "current: {phases: [], instrument: clamp meter" in form
+    assert "voltage: {phases: []" in form
+    data = read_yaml(form).data["readings"]
+    assert data["current"]["phases"] == data["voltage"]["phases"] == []
+    single = text.replace("nameplate: {", "nameplate: {phases: 1, ")
+    plant.write_text(single, encoding="utf-8")
+    loaded = load_plant(folder)
+    assert "current: {value: , instrument: clamp meter" in record_form(loaded, "store", "visit")

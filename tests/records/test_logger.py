@@ -1,4 +1,4 @@
-"""Records from a logger's file: dates, decimals, summer time, disorder, steady windows, cycles, a draft that reads."""
+"""Records from a logger's file: dates, decimals, summer time, disorder, steady windows, a draft that reads."""
 
 from __future__ import annotations
 
@@ -24,7 +24,6 @@ from commission.records.logger import (
     read_log,
     read_mapping,
     steady_windows,
-    whole_cycles,
 )
 from commission.records.logger.clock import FormError, compile_form
 
@@ -218,24 +217,6 @@ def test_a_window_with_a_hole_is_none(log_of: LogOf) -> None:
     start = dt.datetime(2026, 5, 14, 12, 0)
     log = log_of(rows(start, 91) + rows(start + dt.timedelta(seconds=1500), 91))
     assert steady_windows(log) == ()
-
-
-def test_whole_cycles_run_from_start_to_start(log_of: LogOf) -> None:
-    """Ten minutes on, twenty off: three whole cycles are ninety minutes with a running share of one third."""
-    lines = []
-    for n in range(0, 6 * 1800, 10):
-        when = dt.datetime(2026, 5, 14, 12, 0) + dt.timedelta(seconds=n)
-        power = "1,600" if 300 <= n % 1800 < 900 else "0,040"
-        lines.append(f"{when:%d.%m.%Y;%H:%M:%S};2,40;{power};2,85\n")
-    found = whole_cycles(log_of("".join(lines)))
-    assert [w.end - w.start for w in found] == [5400.0] * 3
-    assert found[0].running_share == pytest.approx(1 / 3, abs=1e-3)
-    assert found[0].means["power_input"] == pytest.approx(1600 / 3 + 40 * 2 / 3, rel=1e-3)
-
-
-def test_a_plant_that_never_stops_has_no_cycles(log_of: LogOf) -> None:
-    """Without two clear levels of power nothing is called a cycle."""
-    assert whole_cycles(log_of(rows(dt.datetime(2026, 5, 14, 12, 0), 400))) == ()
 
 
 def test_a_draft_from_a_window_is_a_record(log_of: LogOf, loaded: LoadedPlant, tmp_path: Path) -> None:

@@ -7,7 +7,7 @@ from pathlib import Path
 
 import pytest
 
-from commission.description import LoadedPlant
+from commission.description import LoadedPlant, load_plant
 from commission.records import RecordError, read_record
 
 from .conftest import TRIM, Write
@@ -138,7 +138,41 @@ def test_a_failed_answer_with_a_reason_is_kept_as_failed(write: Write, loaded: L
     """`no`, and a setting outside its bounds, are answers too; they count as failed."""
     answers = "visit.clean: {answer: no, reason: leaves}\n  visit.setting: {answer: 24 bar g, reason: to be set}"
     record = read_record(write(("visit.clean: yes", answers)), loaded)
-    assert {k: a.outcome for k, a in record.answers.items()} == {"visit.clean": "failed", "visit.setting": "failed"}
+    outcomes = {k: a.outcome for k, a in record.answers.items() if k in ("visit.clean", "visit.setting")}
+    assert outcomes == {"visit.clean": "failed", "visit.setting": "failed"}
+
+
+def test_a_reading_answers_its_item(write: Write, loaded: LoadedPlant) -> None:
+    """What stands under readings is not asked again among the answers, and is no item without an answer."""
+    record = read_record(write(), loaded)
+    answer = record.answers["visit.suction"]
+    assert (answer.answer, answer.outcome) == ("2.90 bar g", "done")
+    assert answer.value == record.readings["suction_pressure"].value
+    assert "visit.suction" not in record.unanswered
+
+
+def test_a_reading_answers_no_item_of_another_moment(write: Write, folder: Path) -> None:
+    """Two items that ask for one quantity ask at different moments: each is answered by itself."""
+    own = folder / "checklists" / "own.yaml"
+    more = (
+        "  - {id: visit.later, do: Read it again., answer: value, quantity: suction_pressure, source: common practice}"
+    )
+    own.write_text(own.read_text(encoding="utf-8") + more + "\n", encoding="utf-8")
+    record = read_record(write(), load_plant(folder))
+    assert {"visit.suction", "visit.later"} <= set(record.unanswered)
+
+
+def test_a_reading_outside_what_an_item_allows_fails_it(write: Write, folder: Path) -> None:
+    """A bound that the checklist states for a reading is held, with the reading's remark as the reason."""
+    own = folder / "checklists" / "own.yaml"
+    old = "quantity: suction_pressure,"
+    text = own.read_text(encoding="utf-8")
+    assert old in text
+    own.write_text(text.replace(old, f"{old} must_read: {{at_least: 3.5 bar g}},"), encoding="utf-8")
+    answer = read_record(write(), load_plant(folder)).answers["visit.suction"]
+    assert (answer.outcome, answer.reason) == ("failed", "it was read outside what it must be")
+    path = write(("where: service port}", "where: service port, remark: the valve hunts}"))
+    assert read_record(path, load_plant(folder)).answers["visit.suction"].reason == "the valve hunts"
 
 
 def test_a_missing_file_and_a_list_are_refused(tmp_path: Path, loaded: LoadedPlant, write: Write) -> None:

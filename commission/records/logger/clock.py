@@ -142,10 +142,15 @@ def compile_form(form: str, zone: str | None) -> Clock:
         pattern += re.escape(form[at : found.start()]) + _TOKENS[found.group()]
         at = found.end()
     whole = re.compile(pattern + re.escape(form[at:]))
-    return Clock(whole, _zone(zone), "ss" in tokens, form.endswith("ss"))
+    return Clock(whole, zone_of(zone), "ss" in tokens, form.endswith("ss"))
 
 
-def _zone(name: str | None) -> dt.tzinfo | None:
+def zone_of(name: str | None) -> dt.tzinfo | None:
+    """The zone of this name or offset, None where none is named.
+
+    Raises:
+        FormError: there is no such zone.
+    """
     import zoneinfo
 
     if name is None:

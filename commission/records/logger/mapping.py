@@ -41,6 +41,14 @@ class LoggedColumn(Part):
     where: str | None = Field(None, description="where on the plant it is measured")
 
 
+class CycleColumn(Part):
+    """The column that shows the cycles of a plant that starts and stops, or defrosts."""
+
+    column: str = Field(description="name in the file's header; it may be one of the columns that are read")
+    level: float = Field(description="in the column's own numbers: above it the compressor runs, or it defrosts")
+    by: Literal["start", "defrost"] = Field(description="start: it shows the compressor running; defrost: a defrost")
+
+
 class LoggerMapping(Part):
     """The whole mapping."""
 
@@ -52,6 +60,9 @@ class LoggerMapping(Part):
     unit_rows: int = Field(0, ge=0, le=10, description="rows below the header that hold units or other words")
     time: TimeColumn
     columns: dict[str, LoggedColumn] = Field(min_length=1, description="name in the file's header to its meaning")
+    cycle: CycleColumn | None = Field(
+        None, description="what shows the cycles; left out: the two levels of the power input"
+    )
     missing: tuple[str, ...] = Field((), description="texts that mean: no value; an empty cell always does")
 
     @property

@@ -25,6 +25,8 @@ MOST_LISTED = 20
 """Rows that are named one by one; more are counted."""
 _GAP = 3.0
 """A step of more than so many usual intervals is a gap: one missing row is a hiccup, two are a hole."""
+_CYCLE = "the column that shows the cycles"
+"""Name of its numbers beside those of the quantities."""
 
 
 class LogError(InputError):
@@ -61,7 +63,11 @@ class LogReport:
 
 @dataclass(frozen=True)
 class Log:
-    """A logger's file in SI (pressures Pa absolute). `times` in seconds since 1970-01-01 UTC, rising; NaN: no value."""
+    """A logger's file in SI (pressures Pa absolute). `times` in seconds since 1970-01-01 UTC, rising; NaN: no value.
+
+    `cycle` holds the numbers of the column that shows the cycles, as the logger writes them, where the mapping names
+    one.
+    """
 
     name: str
     mapping: LoggerMapping
@@ -69,6 +75,7 @@ class Log:
     times: NDArray[np.float64]
     values: Mapping[str, NDArray[np.float64]]
     report: LogReport
+    cycle: NDArray[np.float64] | None = None
 
     def moment(self, seconds: float) -> dt.datetime:
         """A time of the log as a moment in UTC."""
@@ -104,7 +111,7 @@ def _header(reader: Iterator[list[str]], mapping: LoggerMapping, name: str) -> d
     """Column numbers by name; the rows above the header and the unit rows below are passed over."""
     rows = [next(reader, []) for _ in range(mapping.rows_above_header + 1)]
     header = {cell.strip().strip("\ufeff"): n for n, cell in reversed(list(enumerate(rows[-1])))}
-    wanted = [*mapping.time_names, *mapping.columns]
+    wanted = [*mapping.time_names, *_columns_of(mapping)]
     missing = [w for w in wanted if w not in header]
     if missing:
         line = mapping.rows_above_header + 1
@@ -122,6 +129,14 @@ def _header(reader: Iterator[list[str]], mapping: LoggerMapping, name: str) -> d
     return header
 
 
+def _columns_of(mapping: LoggerMapping) -> dict[str, list[str]]:
+    """The columns that are read, each with the names under which its numbers are kept."""
+    found = {name: [column.quantity] for name, column in mapping.columns.items()}
+    if mapping.cycle is not None:
+        found.setdefault(mapping.cycle.column, []).append(_CYCLE)
+    return found
+
+
 class _Collected:
     """Rows as they come: times, numbers in the logger's units, counts, and the first of what cannot be read."""
 
@@ -129,14 +144,14 @@ class _Collected:
         self.name, self.mapping = name, mapping
         self.clock = compile_form(mapping.time.form, mapping.time.zone)
         self.times = array("d")
-        self.columns = {column.quantity: array("d") for column in mapping.columns.values()}
+        self.columns = {key: array("d") for keys in _columns_of(mapping).values() for key in keys}
         self.rows = self.missing = self.unreadable = self.bad_times = 0
         self.problems: list[Problem] = []
 
     def take(self, reader: Iterator[list[str]], header: Mapping[str, int]) -> None:
         """All rows that are left in the reader."""
         time_at = [header[n] for n in self.mapping.time_names]
-        places = [(header[n], n, self.columns[c.quantity]) for n, c in self.mapping.columns.items()]
+        places = [(header[n], n, self.columns[k]) for n, keys in _columns_of(self.mapping).items() for k in keys]
         nothing = {"", *self.mapping.missing}
         comma = self.mapping.decimal == "comma"
         one_time = len(time_at) == 1
@@ -206,7 +221,8 @@ def _in_order(name: str, mapping: LoggerMapping, barometric_pressure: float, fou
         found.bad_times, found.clock.repeated_hour, interval,
         tuple(Gap(float(times[n]), float(times[n + 1])) for n in holes), tuple(found.problems),
     )  # fmt: skip
-    return Log(name, mapping, barometric_pressure, times, values, report)
+    cycle = np.frombuffer(found.columns[_CYCLE], dtype=np.float64)[order][first] if mapping.cycle else None
+    return Log(name, mapping, barometric_pressure, times, values, report, cycle)
 
 
 def _si(raw: NDArray[np.float64], key: str, spelling: str, barometric_pressure: float) -> NDArray[np.float64]:

@@ -1,4 +1,4 @@
-"""Where a log stood still long enough for its readings to count, and whole cycles where the plant cycles."""
+"""Where a log stood still long enough for its readings to count."""
 
 from __future__ import annotations
 
@@ -16,14 +16,12 @@ if TYPE_CHECKING:
 PARTS = 5
 """A window is cut in so many parts; their means are the samples. Rows of a logger follow one another too closely to
 be independent: counting each row would make the spread of the mean far too small (batch means, a common method)."""
-_SHORTEST_RUN = 60.0
-"""Seconds; a shorter start is the bounce of a contactor or a reading, not a cycle."""
 
 
 @dataclass(frozen=True, slots=True)
 class Window:
     """A stretch of a log. `means` and `parts` (means of its parts in order) in SI; `score` is the largest movement over
-    its limit, at most 1 for a steady window, None for whole cycles; `running_share` only there.
+    its limit, at most 1 for a steady window, None where nothing in it has a limit.
     """
 
     start: float
@@ -31,7 +29,6 @@ class Window:
     means: Mapping[str, float]
     parts: Mapping[str, tuple[float, ...]]
     score: float | None = None
-    running_share: float | None = None
 
 
 def steady_windows(
@@ -50,48 +47,6 @@ def quietest(
     """The steadiest of the steady windows, the earliest of equals; None where nothing stood still."""
     found = steady_windows(log, length, limits=limits, liquid_sides=liquid_sides)
     return min(found, key=lambda w: (w.score or 0.0, w.start)) if found else None
-
-
-def whole_cycles(log: Log, count: int = 3, key: str = "power_input") -> tuple[Window, ...]:
-    """Stretches of `count` whole cycles, from start to start, by the quantity that shows whether it runs.
-
-    It runs where `key` is above the middle between its low and its high level (10th and 90th percentile). Means are
-    over time, standstill included; without two clear levels (a factor of two) there are no cycles.
-    """
-    import numpy as np
-
-    values = log.values.get(key)
-    if values is None or not np.any(np.isfinite(values)):
-        return ()
-    low, high = (float(x) for x in np.nanpercentile(values, (10, 90)))
-    if high <= 2.0 * abs(low):
-        return ()
-    runs = np.where(np.isfinite(values), values, low) > 0.5 * (low + high)
-    starts = _starts(log.times, runs)
-    sums = _running_sums(log)
-    found = []
-    for first, last in zip(starts[:-count], starts[count:], strict=False):
-        window = _window(log, first, last, sums)
-        if window is not None:
-            inside = (log.times >= first) & (log.times < last)
-            share = float(np.mean(runs[inside]))
-            found.append(Window(window.start, window.end, window.means, window.parts, None, share))
-    return tuple(found)
-
-
-def _starts(times: NDArray[np.float64], runs: NDArray[np.bool_]) -> list[float]:
-    """Moments at which it starts and then runs for a while."""
-    import numpy as np
-
-    edges = np.flatnonzero(np.diff(runs.astype(np.int8))) + 1
-    rising = [int(e) for e in edges if runs[e]]
-    found = []
-    for edge in rising:
-        later = edges[edges > edge]
-        end = times[int(later[0])] if len(later) else times[-1]
-        if end - times[edge] >= _SHORTEST_RUN:
-            found.append(float(times[edge]))
-    return found
 
 
 def _windows(log: Log, length: float, limits: str, liquid_sides: frozenset[str]) -> Iterator[Window]:
