@@ -28,7 +28,10 @@ if TYPE_CHECKING:
 class LoadedPlant:
     """A description that was read and checked.
 
-    `digest` is the SHA-256 (hexadecimal) over the names and bytes of the description's files, `files` their names.
+    `digest` is the SHA-256 (hexadecimal) over the names and bytes of `files`: plant.yaml and what it reads, included
+    files and tables. That is all that predictions and targets depend on, so that a record made by another digest was
+    judged by another description. A plant's own checklists, the words of its emergency card and its upkeep change no
+    expected value and are not part of it.
     """
 
     plant: Plant

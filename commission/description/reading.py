@@ -6,6 +6,7 @@ was written. Tags, anchors and aliases are refused, so no file can build objects
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -23,6 +24,8 @@ MAX_DEPTH = 20
 """Deepest nesting of lists and mappings."""
 MAX_PARTS = 50_000
 """Most keys and values of a file, or of all files of a plant together; fifty systems have about ten thousand."""
+
+_BEFORE_COMMA, _AFTER_COMMA = re.compile(r"-?\d{1,3}$"), re.compile(r"\d{3}(?!\d)")
 
 Loader: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
@@ -192,6 +195,8 @@ class _Builder:
 
     def take_key(self, top: _Open, key: str, place: Position) -> None:
         top.key, top.key_place = key, place
+        if self.joined_by_comma(top, key, place):
+            return
         top.skip = key in top.node
         if top.skip:
             path = (*top.path, key)
@@ -205,6 +210,30 @@ class _Builder:
                     ".".join(map(str, path)),
                 )
             )
+
+    def joined_by_comma(self, top: _Open, key: str, place: Position) -> bool:
+        """Whether `key` is the rest of a number that a thousands comma cut in two: `{flow: 1,200 m3/h}`.
+
+        The number is put together again, so that this slip is told once and not as two others.
+        """
+        assert isinstance(top.node, dict)
+        before, value = next(reversed(top.node.items()), ("", ""))
+        if not (_AFTER_COMMA.match(key) and isinstance(value, str) and _BEFORE_COMMA.match(value)):
+            return False
+        whole = f"{value}{key}"
+        self.problems.append(
+            Problem(
+                "between braces a comma ends the value",
+                self.file,
+                place.line,
+                place.column,
+                ".".join(map(str, (*top.path, before))),
+                shorten(f"{value},{key}", 60),
+                allowed=f"a number without thousands comma, such as {shorten(whole, 60)}",
+            )
+        )
+        top.node[before], top.skip = whole, True
+        return True
 
     def attach(self, top: _Open | None, value: Any, place: Position, text: str | None) -> KeyPath:
         """Put `value` where it belongs; the second of two equal keys is read, but not kept."""

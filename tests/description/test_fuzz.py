@@ -1,6 +1,7 @@
 """Whatever stands in the file, the answer is a plant or problems that name file and line; quickly, in little memory."""
 
 import resource
+import shutil
 import time
 from collections.abc import Callable
 from pathlib import Path
@@ -145,6 +146,44 @@ def test_mutations(folder: Path, texts: tuple[str, ...], data: st.DataObject) ->
     check(folder, data.draw(mutations(data.draw(st.sampled_from(texts)))))
 
 
+@pytest.fixture(scope="module")
+def whole(example_folder: Path, tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """The example's description with its included files and tables, to spoil one file at a time."""
+    target = tmp_path_factory.mktemp("whole")
+    shutil.copy(example_folder / "plant.yaml", target)
+    for part in ("systems", "tables"):
+        shutil.copytree(example_folder / part, target / part)
+    return target
+
+
+def check_included(folder: Path, name: str, text: str) -> None:
+    """Spoil one included file, load, and put it right again; problems name file and line."""
+    path = folder / "systems" / name
+    good = path.read_bytes()
+    path.write_bytes(text.encode("utf-8", "replace"))
+    try:
+        found = problems_of(folder)
+    finally:
+        path.write_bytes(good)
+    for problem in found:
+        assert problem.file
+        assert problem.line is not None, str(problem)
+        assert len(str(problem)) < 3000
+
+
+def spoilt(folder: Path, data: st.DataObject) -> tuple[str, str]:
+    """Name and spoilt text of one of the included files."""
+    path = data.draw(st.sampled_from(sorted((folder / "systems").iterdir())))
+    return path.name, data.draw(mutations(path.read_text(encoding="utf-8")))
+
+
+@settings(ORDINARY, max_examples=40)
+@given(data=st.data())
+def test_mutations_of_included_files(whole: Path, data: st.DataObject) -> None:
+    """A plant with one spoilt file of its systems loads or is refused with file and line."""
+    check_included(whole, *spoilt(whole, data))
+
+
 @ORDINARY
 @given(text=structures())
 def test_structures(folder: Path, text: str) -> None:
@@ -190,6 +229,16 @@ def test_mutations_long(folder: Path, texts: tuple[str, ...], data: st.DataObjec
     """Thousands of spoilt descriptions: nothing over 2 s, and the process grows by less than 300 MB."""
     text = data.draw(mutations(data.draw(st.sampled_from(texts))))
     assert measured(lambda: check(folder, text)) < 2.0
+    assert resource.getrusage(resource.RUSAGE_SELF).ru_maxrss < BEGAN + 300_000
+
+
+@pytest.mark.long
+@settings(LONG, max_examples=1000)
+@given(data=st.data())
+def test_mutations_of_included_files_long(whole: Path, data: st.DataObject) -> None:
+    """A thousand plants with one spoilt file of their systems, within the same bounds."""
+    name, text = spoilt(whole, data)
+    assert measured(lambda: check_included(whole, name, text)) < 2.0
     assert resource.getrusage(resource.RUSAGE_SELF).ru_maxrss < BEGAN + 300_000
 
 

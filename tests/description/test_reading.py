@@ -48,6 +48,23 @@ def test_duplicate_keys_are_kept_as_problems() -> None:
     assert read.data == {"a": "1", "b": {"c": "1"}, "e": "5"}
 
 
+def test_a_thousands_comma_between_braces_is_told_once() -> None:
+    """`{flow: 1,200 m3/h}` is two entries to YAML; one problem says so at the comma, and the number is read whole."""
+    read = read_yaml("a: {flow: 1,200 m3/h, medium: air}\nb: {count: 2, name: x}\n", "f.yaml")
+    (problem,) = read.problems
+    assert (problem.line, problem.column, problem.path, problem.value) == (1, 13, "a.flow", "1,200 m3/h")
+    assert "comma ends the value" in problem.message
+    assert problem.allowed is not None
+    assert problem.allowed.endswith("1200 m3/h")
+    assert read.data == {"a": {"flow": "1200 m3/h", "medium": "air"}, "b": {"count": "2", "name": "x"}}
+
+
+@pytest.mark.parametrize("text", ["a: {1: 100 m3/h, 200 m3/h: x}\n", "a: {b: 12, 34: c}\n", "a: {b: x1, 200: c}\n"])
+def test_other_commas_are_no_thousands(text: str) -> None:
+    """A key that starts with digits is left alone where no bare number of one to three digits stands before it."""
+    assert not read_yaml(text).problems
+
+
 @pytest.mark.parametrize(
     ("text", "message", "line", "column"),
     [
