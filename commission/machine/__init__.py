@@ -1,6 +1,6 @@
 """Compressor, exchangers, cycle, balance: plain SI dataclasses that know nothing of a description."""
 
-from commission.machine.circuit import Parts, SuctionLine
+from commission.machine.circuit import Parts, SuctionLine, between, within_reach
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
 from commission.machine.gas_cooler import (
@@ -49,6 +49,7 @@ __all__ = [
     "Transcritical",
     "air_stream",
     "best_pressure",
+    "between",
     "carnot_cooling",
     "coil_conductance",
     "conductance_for",
@@ -62,4 +63,5 @@ __all__ = [
     "operating_map",
     "solve",
     "ten_coefficients",
+    "within_reach",
 ]

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from abc import ABC, abstractmethod
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from commission.machine.compressor import Compression, Compressor
@@ -10,6 +12,49 @@ from commission.machine.exchanger import Exchanger
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor
 from commission.properties import Refrigerant, State
+
+SUPERHEAT_SHARE = 0.85
+"""Greatest superheat that a valve holds steadily, over the difference between entering medium and evaporation (common
+practice, no source; catalogues rate at 0.65 by EN 328, from memory)."""
+ROUNDING = 0.2
+"""Share of its setting around which a valve goes over from what it is set to, to what the medium allows."""
+SMALL = 0.5
+"""Difference in K between medium and refrigerant below which it is small."""
+
+
+def within_reach(setting: float, difference: float, share: float) -> float:
+    """Superheat or subcooling in K that is held at a `setting` (K) as far as the surface can give it.
+
+    `difference` (K) is that between refrigerant and entering medium. The setting where it leaves room for it; `share`
+    of the difference where it does not (the least stable superheat falls with the load, Huelle 1972, from memory);
+    between the two it goes over smoothly.
+    """
+    allowed = share * difference
+    if allowed >= (1 + ROUNDING) * setting:
+        return setting
+    if allowed <= (1 - ROUNDING) * setting:
+        return allowed
+    return allowed - (allowed - (1 - ROUNDING) * setting) ** 2 / (4 * ROUNDING * setting)
+
+
+def positive(x: float) -> float:
+    """A positive difference in K from an unknown in K that may have any value.
+
+    The difference is the unknown itself where it is large, and goes with its inverse where it is small.
+    """
+    return 0.5 * (x + math.hypot(x, 2.0 * SMALL)) if x > 0 else 2.0 * SMALL * SMALL / (math.hypot(x, 2.0 * SMALL) - x)
+
+
+PINCH = 0.01
+"""Difference at the narrow end over that at the wide end, below which their mean falls on in a straight line."""
+
+
+def between(narrow: float, wide: float) -> float:
+    """Geometric mean of the differences (K) at both ends; below the pinch its tangent, so that a trial beyond it, where
+    no heat flows, can be told from a solution."""
+    if narrow >= PINCH * wide:
+        return math.sqrt(narrow * wide)
+    return 0.5 * (narrow / math.sqrt(PINCH) + math.sqrt(PINCH) * wide)
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,6 +75,8 @@ class SuctionLine:
 class Parts:
     """The parameters of a machine; temperature differences in K. A fault is another value of one of them.
 
+    `superheat` is what the valve is set to; it holds no more than `superheat_share` of the difference between the
+    entering medium and evaporation, see `within_reach`.
     `suction_regulator` is the pressure (Pa) that a crankcase pressure regulator lets through at most;
     `gas_pressure` the pressure (Pa) that gas which does not condense adds on the high side, 0 in a healthy circuit.
     """
@@ -44,6 +91,7 @@ class Parts:
     discharge_line_loss: float = 0.0
     suction_regulator: float | None = None
     gas_pressure: float = 0.0
+    superheat_share: float = SUPERHEAT_SHARE
 
 
 class Circuit(ABC):
@@ -55,16 +103,16 @@ class Circuit(ABC):
     def __init__(self, machine: Parts, media: Media) -> None:
         self.machine = machine
         self.media = media
-        self._low: dict[float, tuple[State, State]] = {}
+        self._low: dict[tuple[float, float], tuple[State, State]] = {}
         self._drives: dict[tuple[float, float], float] = {}
         self._end: State | None = None
-        self._cycles: dict[tuple[float, float], tuple[Compression, float, float]] = {}
+        self._cycles: dict[tuple[float, float, float], tuple[Compression, float, float]] = {}
 
-    def low_side(self, evaporating: float) -> tuple[State, State]:
-        """States at the evaporator outlet and at the suction port."""
-        if evaporating not in self._low:
+    def low_side(self, evaporating: float, superheat: float) -> tuple[State, State]:
+        """States at the evaporator outlet, with `superheat` (K), and at the suction port."""
+        if (evaporating, superheat) not in self._low:
             m, fluid = self.machine, self.machine.refrigerant
-            outlet = fluid.vapour(evaporating + m.superheat, fluid.dew_pressure(evaporating))
+            outlet = fluid.vapour(evaporating + superheat, fluid.dew_pressure(evaporating))
             line = m.suction_line
             suction = outlet
             if line.pressure_loss or line.heating_share or line.warming:
@@ -72,8 +120,8 @@ class Circuit(ABC):
                 suction = fluid.vapour(outlet.T + warmer, fluid.dew_pressure(evaporating - line.pressure_loss))
             if m.suction_regulator is not None and suction.p > m.suction_regulator:
                 suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
-            self._low[evaporating] = (outlet, suction)
-        return self._low[evaporating]
+            self._low[evaporating, superheat] = (outlet, suction)
+        return self._low[evaporating, superheat]
 
     @abstractmethod
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
@@ -83,43 +131,97 @@ class Circuit(ABC):
     def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
         """States between compressor and valve, for tables and the diagram."""
 
-    def cycle(self, evaporating: float, second: float) -> tuple[Compression, float, float]:
-        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
-        if (evaporating, second) not in self._cycles:
-            outlet, suction = self.low_side(evaporating)
+    def cycle(
+        self, evaporating: float, second: float, superheat: float | None = None
+    ) -> tuple[Compression, float, float]:
+        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W.
+
+        `superheat` (K) is that at the evaporator outlet, that of the setting where none is given.
+        """
+        held = self.machine.superheat if superheat is None else superheat
+        if (evaporating, second, held) not in self._cycles:
+            outlet, suction = self.low_side(evaporating, held)
             discharge, liquid = self.high_side(evaporating, second)
             compressor, share = self.machine.compressor, self.media.speed_share
             compression = compressor.compress(self.machine.refrigerant, suction, discharge, share, self._end)
             self._end = compression.isentropic_end
             source = compression.flow * (outlet.h - liquid.h)
             sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
-            self._cycles[evaporating, second] = compression, source, sink
-        return self._cycles[evaporating, second]
+            self._cycles[evaporating, second, held] = compression, source, sink
+        return self._cycles[evaporating, second, held]
 
-    def source_drive(self, evaporating: float, second: float) -> float:
-        """Temperature that drives the evaporator: for blends the mean along it."""
+    def source_drive(self, evaporating: float, second: float, entering: float) -> float:
+        """Temperature that drives the evaporator with a medium that enters at `entering` (K).
+
+        For blends it lies below the medium by the geometric mean of the differences at both ends, so that a dew point
+        never comes near the medium; they are taken about the mean temperature along the evaporator.
+        """
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
             return evaporating
         if (evaporating, second) not in self._drives:
             liquid, pressure = self.high_side(evaporating, second)[1], fluid.dew_pressure(evaporating)
             self._drives[evaporating, second] = fluid.mean_evaporating_temperature(pressure, liquid.h)
-        return self._drives[evaporating, second]
+        mean, end = entering - self._drives[evaporating, second], entering - evaporating
+        return entering - between(end, 2.0 * mean - end)
 
-    def source_gap(self, evaporating: float, second: float, taken: float) -> float:
-        """Heat that the source gives less heat that the refrigerant takes, in tens of kelvin of the exchanger."""
+    def gas_heat(self, evaporating: float, superheat: float, flow: float) -> float:
+        """Heat in W that superheats the gas inside the evaporator."""
+        return flow * (self.low_side(evaporating, superheat)[0].h - self.machine.refrigerant.dew(evaporating).h)
+
+    def low_guess(self) -> tuple[float, ...]:
+        """The unknowns of the low side to start from: one for a difference between medium and refrigerant, and the
+        inlet (K) of a medium that is known by its outlet."""
+        source, first = self.media.source, max(8.0, 1.2 * self.machine.superheat)
+        return (first, source.temperature + 4.0) if source.by_outlet else (first,)
+
+    def entering(self, low: Sequence[float]) -> float:
+        """Inlet (K) of the medium."""
+        return low[1] if self.media.source.by_outlet else self.media.source.temperature
+
+    def controlled(self, low: Sequence[float]) -> tuple[float, float]:
+        """Evaporating temperature and superheat (K) with a valve that holds its setting as far as the medium allows."""
+        m, difference = self.machine, positive(low[0])
+        return self.entering(low) - difference, within_reach(m.superheat, difference, m.superheat_share)
+
+    def dry_share(self, evaporating: float, second: float, superheat: float, entering: float) -> float:
+        """Share of the evaporator's surface that only superheats gas, where the medium enters at `entering` (K).
+
+        The mean difference is the geometric one of both ends of the dry zone, the medium entering where the gas leaves.
+        Up to a superheat of 0.8 of the inlet difference it is within 13 % of the logarithmic mean, beyond it asks for
+        more surface, as circuits that share their load unevenly do; so gas never leaves as warm as the medium comes.
+        """
+        flow, difference = self.cycle(evaporating, second, superheat)[0].flow, entering - evaporating
+        mean = math.sqrt(max(difference * (difference - superheat), 1e-12))
+        gas = self.gas_heat(evaporating, superheat, flow)
+        return self.machine.evaporator.dry_share(self.media.source, gas, mean)
+
+    def low_gaps(self, low: Sequence[float], evaporating: float, second: float, superheat: float) -> tuple[float, ...]:
+        """Heat that the wetted surface gives less heat that evaporation takes, in tens of kelvin of the exchanger, and
+        what the inlet of a medium known by its outlet misses, in tens of kelvin.
+
+        A valve superheats by leaving surface dry, so that the evaporator has two zones with a moving boundary.
+        """
         source, exchanger = self.media.source, self.machine.evaporator
-        given = exchanger.heat_from(source, self.source_drive(evaporating, second))
-        return (given - taken) / (exchanger.heat_per_kelvin(source) * 10.0)
+        compression, taken, _ = self.cycle(evaporating, second, superheat)
+        gas = self.gas_heat(evaporating, superheat, compression.flow)
+        wetted = 1.0 - self.dry_share(evaporating, second, superheat, self.entering(low))
+        given = exchanger.heat_from(source, self.source_drive(evaporating, second, self.entering(low)), wetted, gas)
+        gap = (given - (taken - gas)) / (exchanger.heat_per_kelvin(source) * 10.0)
+        return (gap, (source.inlet(-taken) - low[1]) / 10.0) if source.by_outlet else (gap,)
 
     def second(self, balance: Balance) -> float:
         """The second unknown of a balance."""
         return balance.unknowns[-1]
 
+    @abstractmethod
+    def subcooling(self, balance: Balance) -> float | None:
+        """Subcooling in K of the liquid before the valve; None where nothing condenses."""
+
     def point(self, balance: Balance) -> OperatingPoint:
         """All states of a balance."""
-        m, fluid = self.machine, self.machine.refrigerant
-        outlet, suction = self.low_side(balance.evaporating_temperature)
+        fluid = self.machine.refrigerant
+        outlet, suction = self.low_side(balance.evaporating_temperature, balance.superheat)
         pressure, liquid = self.high_side(balance.evaporating_temperature, self.second(balance))
         compression = balance.compression
         discharge = fluid.vapour_from_enthalpy(
@@ -141,9 +243,9 @@ class Circuit(ABC):
             suction_temperature=suction.T,
             discharge_temperature=discharge.T,
             liquid_temperature=liquid.T,
-            superheat=m.superheat,
+            superheat=balance.superheat,
             compressor_superheat=suction.T - fluid.dew_temperature(suction.p),
-            subcooling=m.subcooling if balance.condensing_temperature is not None else None,
+            subcooling=self.subcooling(balance),
             valve_outlet_temperature=throttled.T,
             line_gain=balance.compression.flow * (suction.h - outlet.h),
             states=states,

@@ -13,8 +13,14 @@ from typing import Literal
 
 from commission.errors import NotCalculatedError
 from commission.machine.streams import Stream
-from commission.machine.wet_air import coil_conductance, coil_heat
+from commission.machine.wet_air import coil_heat
 
+GAS_SHARE = 0.25
+"""Conductance of a surface that only superheats gas, over that of the same surface wetted (common practice, no source):
+the gas side transfers a tenth of what boiling does, but it is only a part of the resistance."""
+LEAST_WETTED, DEPTH = 0.01, 5.0
+"""Wetted share below which heat falls on in a straight line, as if against so many kelvin: no balance lies there, but a
+trial that leaves nothing wetted must be told how far off it is."""
 MOST_UNITS = 50.0
 """Transfer units beyond which the inlet of a medium cannot be told from its outlet: e^-50 of the difference is left."""
 
@@ -69,12 +75,15 @@ class Exchanger:
     `conductance` in W/K holds at `rated_flow` (m3/s) of the medium; elsewhere it follows flow to the power
     `flow_exponent`, which is the share of the medium's side in the whole resistance times its own exponent.
     `air_share` is the air side's share of the resistance of a coil that may be wet; None for one that stays dry.
+    `gas_share` counts for an evaporator: `conductance` is that of its whole surface wetted, and a dry part has
+    `gas_share` times as much.
     """
 
     conductance: float
     rated_flow: float
     flow_exponent: float = 0.0
     air_share: float | None = None
+    gas_share: float = GAS_SHARE
 
     def conductance_at(self, volume_flow: float) -> float:
         """Conductance in W/K at another flow of the medium in m3/s."""
@@ -82,22 +91,26 @@ class Exchanger:
             return self.conductance
         return self.conductance * float((volume_flow / self.rated_flow) ** self.flow_exponent)
 
-    def heat_from(self, stream: Stream, refrigerant: float) -> float:
-        """Heat in W that a medium gives to refrigerant evaporating at `refrigerant` (K), wet coils included."""
-        if self.air_share is not None and stream.air is not None:
-            return coil_heat(stream, refrigerant, self.conductance_at(stream.volume_flow), self.air_share)
-        return self.heat_per_kelvin(stream) * (stream.temperature - refrigerant)
+    def heat_from(self, stream: Stream, refrigerant: float, wetted: float = 1.0, before: float = 0.0) -> float:
+        """Heat in W that a medium gives to refrigerant evaporating at `refrigerant` (K), wet coils included.
 
-    def conductance_for(self, stream: Stream, heat: float, refrigerant: float) -> float:
-        """Conductance in W/K with which this exchanger would take `heat` (W) from the medium: inverse of `heat_from`.
-
-        Raises:
-            NotCalculatedError: more heat than the medium can give at that difference.
+        `wetted` is the share of the surface at work. A medium that is known by its inlet gives heat `before` (W) to
+        another zone first, and comes colder by as much.
         """
+        if wetted < LEAST_WETTED:
+            lacking = (LEAST_WETTED - wetted) * self.conductance_at(stream.volume_flow) * DEPTH
+            return self.heat_from(stream, refrigerant, LEAST_WETTED, before) - lacking
+        conductance = wetted * self.conductance_at(stream.volume_flow)
         if self.air_share is not None and stream.air is not None:
-            return coil_conductance(heat, refrigerant, stream, self.air_share)
-        difference = abs(stream.inlet(-heat) - refrigerant)
-        return conductance_for(heat, difference, stream.capacity_rate)
+            heat = coil_heat(stream, refrigerant, conductance, self.air_share)
+        else:
+            heat = self.heat_per_kelvin(stream, surface_share=wetted) * (stream.temperature - refrigerant)
+        return heat if stream.by_outlet else heat - before * effectiveness(conductance / stream.capacity_rate)
+
+    def dry_share(self, stream: Stream, heat: float, difference: float) -> float:
+        """Share of the surface that takes `heat` (W) to superheat gas, at a mean `difference` (K) to the medium; above
+        1 where it is not enough."""
+        return heat / (self.gas_share * self.conductance_at(stream.volume_flow) * difference)
 
     def heat_per_kelvin(self, stream: Stream, flow_share: float = 1.0, surface_share: float = 1.0) -> float:
         """Heat in W for each kelvin between the known temperature of the medium and the refrigerant.

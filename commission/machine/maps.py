@@ -1,40 +1,39 @@
 """A whole map of operating points at once: sources by sinks. SI units.
 
-The states of the low side depend on the evaporating temperature alone, those of the high side on the condensing
-temperature alone, and only the compression on both (and on the air around the suction line). So the cycle is charted
-once as a Chebyshev series over both temperatures, and all points are balanced on it together by Newton's method. The
-series is checked against the cycle itself at the corners of the map. What does not lie on one smooth branch (head
-pressure held, suction pressure limited, a fixed restriction, a flow set by its outlet) is operated point by point.
+The cycle is charted once (see `chart`), and all points are balanced on it together by Newton's method, with the same
+equations as a single point. The chart is checked against the cycle itself at the corners of the map. What does not lie
+on one smooth branch (head pressure held, suction pressure limited, a fixed restriction, a flow set by its outlet) is
+operated point by point.
 """
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
+from functools import cached_property
 
 import numpy as np
-from numpy.polynomial import chebyshev
 
 from commission.errors import NotCalculatedError
+from commission.machine.chart import TERMS, Chart, Ends, Flags, Series
+from commission.machine.circuit import PINCH, ROUNDING, SMALL
+from commission.machine.exchanger import DEPTH, LEAST_WETTED
 from commission.machine.operating_point import Balance, Media
-from commission.machine.single_stage import FREE, SingleStage, _Circuit
+from commission.machine.single_stage import COLDEST, FREE, CondenserCircuit, SingleStage
 from commission.machine.streams import Stream
 from commission.machine.wet_air import coil_heats
-from commission.properties import State
-from commission.properties.lines import Array, nodes, series_at_nodes
+from commission.properties.lines import Array
 
-Ends = tuple[float, float]
-Flags = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
-TERMS, AROUND_TERMS = 8, (3, 4)
-"""Terms of the series in each dew temperature, and in the temperature around the suction line, more where too few."""
+AROUND_TERMS = 3, 4
+"""Terms of the chart in the temperature around the suction line, more where too few."""
 EXACT = 5e-7
-"""How well, relative, the series must repeat the cycle at the corners of the map."""
+"""How well, relative, the chart must repeat the cycle at the corners of the map."""
 ENOUGH = 1e-8
 """Newton's method ends when no temperature moves by more than this, in K."""
-COLUMNS = ("source", "sink", "source_drive", "sink_drive", "power", "flow", "discharge")
-"""What is charted: heat from source and to sink (W), temperatures that drive the exchangers (K), power (W), flow
-(kg/s), temperature at the discharge (K). The first four enter the balance."""
-BALANCED = 4
+STEP = 1e-3
+"""Step of the differences for Newton's method, in K."""
+FOUND = ("source", "sink", "power", "flow", "discharge")
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,7 +73,7 @@ def operating_map(
         raise ValueError("a map needs sources and sinks, and for each sink the temperature around the pipes")
     grid = _Grid(machine, tuple(sources), tuple(sinks), tuple(surroundings), speed_share)
     shape = len(sources), len(sinks)
-    columns = {name: np.full(shape, np.nan) for name in ("evaporating", "condensing", *COLUMNS)}
+    columns = {name: np.full(shape, np.nan) for name in ("evaporating", "condensing", *FOUND)}
     charted: Flags = np.zeros(shape, dtype=np.bool_)
     found = _balanced(grid)
     if found is not None:
@@ -138,11 +137,11 @@ def _one_by_one(
             continue
         near = point.balance
         compression = near.compression
-        heats = (near.heat_from_source, near.heat_to_sink, near.source_drive, near.sink_drive)
-        others = (compression.power, compression.flow, point.discharge_temperature)
+        heats = near.heat_from_source, near.heat_to_sink
+        others = compression.power, compression.flow, point.discharge_temperature
         columns["evaporating"][place] = near.evaporating_temperature
         columns["condensing"][place] = near.condensing_temperature
-        for name, value in zip(COLUMNS, (*heats, *others), strict=True):
+        for name, value in zip(FOUND, (*heats, *others), strict=True):
             columns[name][place] = value
         regimes[place[0]][place[1]] = near.regime
     return because
@@ -151,196 +150,205 @@ def _one_by_one(
 def _balanced(grid: _Grid) -> tuple[dict[str, Array], Flags] | None:
     """All points on the free branch together, and which of them hold; None where there is no one smooth branch."""
     machine = grid.machine
-    smooth = machine.restriction is None and machine.suction_regulator is None
+    smooth = machine.restriction is None and machine.suction_regulator is None and not machine.flash
     if not smooth or len(grid.sources) * len(grid.sinks) < 3 * TERMS:
         return None
     if len({s.air is None for s in grid.sources}) > 1:
         return None
-    if any(s.outlet_wanted is not None for s in (*grid.sources, *grid.sinks)):
+    if any(s.outlet_wanted is not None for s in (*grid.sources, *grid.sinks)) or any(s.by_outlet for s in grid.sources):
         return None
-    free = replace(machine, head_pressure=None, greatest_evaporating=None)
+    free = replace(machine, head_pressure=None, greatest_evaporating=None, greatest_feed=None)
+    grid = replace(grid, machine=free)
     try:
         corners = {place: free.balance(grid.media(*place)) for place in grid.corners()}
-        chart = _chart(replace(grid, machine=free), corners)
+        chart = _chart(grid, corners)
     except NotCalculatedError:
         return None
     if chart is None:
         return None
-    evaporating, condensing, settled = _newton(grid, chart, corners)
-    values = chart.along(grid.surroundings).values(evaporating, condensing)
-    found = {"evaporating": evaporating, "condensing": condensing, **dict(zip(COLUMNS, values, strict=True))}
+    found = _Balances(grid, chart.along(grid.surroundings), chart)
+    low, condensing, settled = _newton(found, corners)
+    difference = found.difference(low)
+    evaporating = np.array([s.temperature for s in grid.sources])[:, None] - difference
+    values = {name: v[0] for name, v in found.at(evaporating[None], condensing[None]).items()}
+    values["dry"] = found.dry(difference, values["gas"])
+    settled &= machine.superheat_share * difference >= (1 + ROUNDING) * machine.superheat
+    settled &= chart.holds(evaporating, condensing, values["subcooling"]) & (values["dry"] < 1 - LEAST_WETTED)
     control, limit = machine.head_pressure, machine.greatest_evaporating
     if control is not None:
         settled &= condensing >= control.hold
     if limit is not None:
         settled &= evaporating <= limit
-    return found, settled
+    if machine.greatest_feed is not None:
+        settled &= False
+    return {"evaporating": evaporating, "condensing": condensing, **{k: values[k] for k in FOUND}}, settled
 
 
-def _chart(grid: _Grid, corners: dict[tuple[int, int], Balance]) -> _Chart | None:
+def _chart(grid: _Grid, corners: dict[tuple[int, int], Balance]) -> Chart | None:
     """The chart with as few terms as repeat the corners; None where none do."""
+    found = corners.values()
+    circuits = [CondenserCircuit(grid.machine, grid.media(*place)) for place in corners]
+    cooled = [c.subcooled(c.second(b)) for c, b in zip(circuits, found, strict=True)]
+    dews = [b.evaporating_temperature for b in found], [b.condensing_temperature or np.nan for b in found]
+    ends = _ends(dews[0], 0.5), _ends(dews[1], 0.5), _ends(grid.surroundings, 0.0)
     for terms in AROUND_TERMS:
-        chart = _Chart.of(grid, list(corners.values()), terms)
-        if all(chart.repeats(b, grid.surroundings[j]) for (_, j), b in corners.items()):
+        chart = Chart.of(grid.machine, lambda around: grid.media(0, 0, around), ends, _ends(cooled, 0.1), terms)
+        if _repeats(grid, chart, corners):
             return chart
-        if chart.series.shape[1] == 1:
+        if chart.compression.shape[1] == 1:
             return None
     return None
 
 
-def _newton(grid: _Grid, chart: _Chart, corners: dict[tuple[int, int], Balance]) -> tuple[Array, Array, Flags]:
-    """Evaporating and condensing temperature (K) of all points, and which of them have settled inside the chart."""
-    source = np.array([s.temperature for s in grid.sources])[:, None]
-    sink = np.array([s.temperature for s in grid.sinks])[None, :]
-    rate = np.array([grid.machine.condenser.heat_per_kelvin(s) for s in grid.sinks])[None, :]
-    low = np.array([grid.machine.evaporator.heat_per_kelvin(s) for s in grid.sources])[:, None]
-    series = chart.along(grid.surroundings)
-    ends = np.array([[b.evaporating_temperature, b.condensing_temperature or np.nan] for b in corners.values()])
+def _repeats(grid: _Grid, chart: Chart, corners: dict[tuple[int, int], Balance]) -> bool:
+    """Whether the chart gives the heat of balances that were found without it."""
+    shape = len(grid.sources), len(grid.sinks)
+    evaporating, condensing = np.full(shape, np.mean(chart.ends[0])), np.full(shape, np.mean(chart.ends[1]))
+    for place, balance in corners.items():
+        evaporating[place], condensing[place] = balance.evaporating_temperature, balance.condensing_temperature
+    found = _Balances(grid, chart.along(grid.surroundings), chart).at(evaporating[None], condensing[None])
+    return all(
+        abs(found[name][0][place] / value - 1) < EXACT
+        for place, b in corners.items()
+        for name, value in (
+            ("source", b.heat_from_source), ("sink", b.heat_to_sink), ("power", b.compression.power),
+        )
+    )  # fmt: skip
+
+
+def _newton(found: _Balances, corners: dict[tuple[int, int], Balance]) -> tuple[Array, Array, Flags]:
+    """The unknown of the low side (see `positive`) and the condensing temperature (K) of all points, and which of
+    them have settled."""
+    grid, chart = found.grid, found.chart
+    ends = np.array([[b.unknowns[0], b.condensing_temperature or np.nan] for b in corners.values()])
     plane = np.array([[1.0, grid.sources[i].temperature, grid.sinks[j].temperature] for i, j in corners])
     slopes = np.linalg.lstsq(plane, ends, rcond=None)[0]
+    source = np.array([s.temperature for s in grid.sources])[:, None]
+    sink = np.array([s.temperature for s in grid.sinks])[None, :]
     x, y = (a + b * source + c * sink for a, b, c in slopes.T)
     moved = np.full(x.shape, np.inf)
-    for _ in range(15):
-        x, y = chart.inside(x, y)
-        value, by_x, by_y = series.slopes(x, y)
-        given, by_drive = _given(grid, value[2])
-        first, second = given - value[0], rate * (value[3] - sink) - value[1]
-        a, b = by_drive * by_x[2] - by_x[0], by_drive * by_y[2] - by_y[0]
-        c, d = rate * by_x[3] - by_x[1], rate * by_y[3] - by_y[1]
-        a, b, first = a / low, b / low, first / low
-        c, d, second = c / rate, d / rate, second / rate
+    for _ in range(20):
+        y = np.clip(y, *chart.ends[1])
+        first, second = found.gaps(np.stack((x, x - STEP, x)), np.stack((y, y, y - STEP)))
+        a, b = (first[0] - first[1]) / STEP, (first[0] - first[2]) / STEP
+        c, d = (second[0] - second[1]) / STEP, (second[0] - second[2]) / STEP
         determinant = a * d - b * c
-        dx, dy = (b * second - d * first) / determinant, (c * first - a * second) / determinant
+        dx = (b * second[0] - d * first[0]) / determinant
+        dy = (c * first[0] - a * second[0]) / determinant
         x, y = x + dx, y + dy
         moved = np.maximum(np.abs(dx), np.abs(dy))
         if float(np.nanmax(moved)) < ENOUGH:
             break
-    return x, y, (moved < ENOUGH) & chart.holds(x, y)
-
-
-def _given(grid: _Grid, drive: Array) -> tuple[Array, Array]:
-    """Heat (W) that the sources give to refrigerant at `drive` (K), and its derivative: dry, wet or liquid."""
-    evaporator, streams = grid.machine.evaporator, grid.sources
-    if evaporator.air_share is None or any(s.air is None for s in streams):
-        per_kelvin = np.array([evaporator.heat_per_kelvin(s) for s in streams])[:, None]
-        warm = np.array([s.temperature for s in streams])[:, None]
-        return per_kelvin * (warm - drive), np.broadcast_to(-per_kelvin, drive.shape)
-    conductances = np.array([evaporator.conductance_at(s.volume_flow) for s in streams])
-    here, near = coil_heats(streams, np.stack((drive, drive - 1e-3)), conductances, evaporator.air_share)
-    return here, (here - near) / 1e-3
+    return x, y, moved < ENOUGH
 
 
 @dataclass(frozen=True)
-class _Series:
-    """The chart at the surroundings of each sink; `series` has the shape (sinks, columns, terms, terms)."""
+class _Balances:
+    """The equations of the balance for all points at once; arrays have the shape (any, sources, sinks)."""
 
-    ends: tuple[Ends, Ends]
-    series: Array
+    grid: _Grid
+    series: Series
+    chart: Chart
 
-    def values(self, evaporating: Array, condensing: Array) -> Array:
-        """The columns at points of shape (any, sinks): shape (columns, any, sinks)."""
-        return self._summed(self.series, evaporating, condensing)
+    @cached_property
+    def _sink(self) -> tuple[Array, Array, Array]:
+        """Known temperatures (K) of the sinks, W for each kelvin of difference, and rise by outlet for each kelvin."""
+        condenser, sinks = self.grid.machine.condenser, self.grid.sinks
+        rates = [condenser.heat_per_kelvin(s) for s in sinks]
+        rises = [r / s.capacity_rate if s.by_outlet else 0.0 for r, s in zip(rates, sinks, strict=True)]
+        return np.array([s.temperature for s in sinks]), np.array(rates), np.array(rises)
 
-    def slopes(self, evaporating: Array, condensing: Array) -> tuple[Array, Array, Array]:
-        """The columns of the balance and their derivatives by both dew temperatures."""
-        used = self.series[:, :BALANCED]
-        along = [_derived(used, axis) * (2.0 / (b - a)) for axis, (a, b) in zip((2, 3), self.ends, strict=True)]
-        found = self._summed(np.concatenate((used, *along), axis=1), evaporating, condensing)
-        return found[:BALANCED], found[BALANCED : 2 * BALANCED], found[2 * BALANCED :]
+    @cached_property
+    def _source(self) -> tuple[Array, Array, Array, Array]:
+        """Known temperatures (K) of the sources, capacity rates, conductances and W for each kelvin, as columns."""
+        evaporator, sources = self.grid.machine.evaporator, self.grid.sources
+        figures = (
+            [s.temperature for s in sources],
+            [s.capacity_rate for s in sources],
+            [evaporator.conductance_at(s.volume_flow) for s in sources],
+            [evaporator.heat_per_kelvin(s) for s in sources],
+        )
+        a, b, c, d = (np.array(f)[:, None] for f in figures)
+        return a, b, c, d
 
-    def _summed(self, series: Array, evaporating: Array, condensing: Array) -> Array:
-        x, y = (_terms(v, ends, TERMS) for v, ends in zip((evaporating, condensing), self.ends, strict=True))
-        return np.asarray(np.einsum("ijqe,ije->qij", np.einsum("jqec,ijc->ijqe", series, y), x))
+    def at(self, evaporating: Array, condensing: Array) -> dict[str, Array]:
+        """`FOUND` at dew temperatures (K), with what the balance needs beside them."""
+        value = self.series.at(evaporating, condensing)
+        known, _, rise = self._sink
+        machine, bubble = self.grid.machine, value["bubble"]
+        value["sink_drive"] = condensing
+        if machine.refrigerant.is_blend:
+            by_outlet = np.array([s.by_outlet for s in self.grid.sinks])
+            mean = _between(bubble - known, condensing - known)
+            value["sink_drive"] = np.where(by_outlet, 0.5 * (condensing + bubble), known + mean)
+        if machine.subcooling_share is None:
+            subcooling = np.full(bubble.shape, machine.subcooling)
+        else:
+            entering = np.where(rise > 0, np.maximum(known - rise * (value["sink_drive"] - known), COLDEST), known)
+            subcooling = _within_reach(machine.subcooling, bubble - entering, machine.subcooling_share)
+        liquid = self.chart.liquid.at(condensing, subcooling)
+        value["source"] = value["outlet"] - value["flow"] * liquid
+        value["sink"] = value["given"] - value["flow"] * liquid
+        value["source_drive"] = evaporating
+        if self.chart.drive is not None:
+            warm = self._source[0]
+            mean, end = warm - self.chart.drive.at(evaporating, liquid), warm - evaporating
+            value["source_drive"] = warm - _between(end, 2.0 * mean - end)
+        value["subcooling"] = subcooling
+        return value
 
+    def difference(self, low: Array) -> Array:
+        """Inlet of the source over evaporation (K) that goes with the unknown of the low side; see `positive`."""
+        far = np.hypot(low, 2.0 * SMALL)
+        return np.where(low > 0, 0.5 * (low + far), 2.0 * SMALL**2 / (far + np.abs(low)))
 
-@dataclass(frozen=True)
-class _Chart:
-    """Series of `COLUMNS` over evaporating, condensing and surrounding temperature between `ends` (K).
+    def dry(self, difference: Array, gas: Array) -> Array:
+        """`dry_share` of the circuit for arrays."""
+        machine = self.grid.machine
+        mean = np.sqrt(np.maximum(difference * (difference - machine.superheat), 1e-12))
+        return np.asarray(gas / (machine.evaporator.gas_share * self._source[2] * mean))
 
-    `series` has the shape (columns, terms around, terms, terms).
-    """
-
-    ends: tuple[Ends, Ends, Ends]
-    series: Array
-
-    @classmethod
-    def of(cls, grid: _Grid, corners: Sequence[Balance], around_terms: int) -> _Chart:
-        """Chart the cycle over the range of the corners and a little more.
-
-        Raises:
-            NotCalculatedError: the cycle cannot be calculated all over that range.
-        """
-        first = _ends([b.evaporating_temperature for b in corners], 0.5)
-        second = _ends([b.condensing_temperature or np.nan for b in corners], 0.5)
-        third = _ends(grid.surroundings, 0.0)
-        heated = grid.machine.suction_line.heating_share != 0.0 and third[1] > third[0]
-        levels = _spread(third, around_terms) if heated else [third[0]]
-        table = np.empty((len(COLUMNS), len(levels), TERMS, TERMS))
-        for k, around in enumerate(levels):
-            circuit = _Circuit(grid.machine, grid.media(0, 0, around))
-            near: State | None = None
-            for j, condensing in enumerate(_spread(second, TERMS)):  # compressions to one pressure lie near each other
-                for i, evaporating in enumerate(_spread(first, TERMS)):
-                    table[:, k, i, j], near = _row(circuit, evaporating, condensing, near)
-        for axis in (1, 2, 3):
-            table = np.moveaxis(series_at_nodes(np.moveaxis(table, axis, -1)), -1, axis)
-        return cls((first, second, third), table)
-
-    def along(self, surroundings: Sequence[float]) -> _Series:
-        """The chart at these temperatures (K) around the suction line."""
-        terms = _terms(np.array(surroundings), self.ends[2], self.series.shape[1])
-        return _Series(self.ends[:2], np.einsum("jk,qkec->jqec", terms, self.series))
-
-    def inside(self, evaporating: Array, condensing: Array) -> tuple[Array, Array]:
-        """Temperatures held inside the chart while a solution is sought."""
-        return np.clip(evaporating, *self.ends[0]), np.clip(condensing, *self.ends[1])
-
-    def holds(self, evaporating: Array, condensing: Array) -> Flags:
-        """Which points lie inside the chart."""
-        (a, b), (c, d) = self.ends[:2]
-        return (a <= evaporating) & (evaporating <= b) & (c <= condensing) & (condensing <= d)
-
-    def repeats(self, balance: Balance, around: float) -> bool:
-        """Whether the series gives the heat of a balance that was found without it."""
-        assert balance.condensing_temperature is not None
-        place = (np.array([[v]]) for v in (balance.evaporating_temperature, balance.condensing_temperature))
-        found = dict(zip(COLUMNS, self.along((around,)).values(*place)[:, 0, 0].tolist(), strict=True))
-        wanted = {"source": balance.heat_from_source, "sink": balance.heat_to_sink, "power": balance.compression.power}
-        return all(abs(found[name] / value - 1) < EXACT for name, value in wanted.items())
-
-
-def _terms(value: Array, ends: Ends, count: int) -> Array:
-    """Chebyshev polynomials of `value` between `ends`, along a new last axis."""
-    low, high = ends
-    scaled = (2.0 * value - low - high) / (high - low) if count > 1 else np.zeros_like(value)
-    return np.asarray(chebyshev.chebvander(scaled, count - 1))
+    def gaps(self, low: Array, condensing: Array) -> tuple[Array, Array]:
+        """`low_gaps` and `sink_gap` of the circuit for arrays, in kelvin of the exchangers."""
+        known, rate, conductance, per_kelvin = self._source
+        evaporating = np.clip(known - self.difference(low), *self.chart.ends[0])
+        value = self.at(evaporating, condensing)
+        machine, dry = self.grid.machine, self.dry(known - evaporating, value["gas"])
+        wetted = np.maximum(1.0 - dry, LEAST_WETTED)
+        units = wetted * conductance / rate
+        if machine.evaporator.air_share is not None and all(s.air is not None for s in self.grid.sources):
+            share = machine.evaporator.air_share
+            given = coil_heats(self.grid.sources, value["source_drive"], wetted * conductance, share)
+        else:
+            given = rate * -np.expm1(-units) * (known - value["source_drive"])
+        given = given + value["gas"] * np.expm1(-units)
+        given = given - np.maximum(LEAST_WETTED - 1.0 + dry, 0.0) * conductance * DEPTH
+        sink, sink_rate, _ = self._sink
+        return (
+            (given - value["source"] + value["gas"]) / per_kelvin,
+            value["sink_drive"] - sink - value["sink"] / sink_rate,
+        )
 
 
-def _row(
-    circuit: _Circuit, evaporating: float, condensing: float, near: State | None
-) -> tuple[tuple[float, ...], State]:
-    """`COLUMNS` at one pair of dew temperatures, and the discharge; `near` is a neighbouring one."""
-    compression, source, sink = circuit.cycle(evaporating, condensing)
-    pressure = circuit.high_side(evaporating, condensing)[0]
-    discharge = circuit.machine.refrigerant.vapour_from_enthalpy(pressure, compression.discharge_enthalpy, near)
-    drives = circuit.source_drive(evaporating, condensing), circuit.sink_drive(condensing)
-    return (source, sink, *drives, compression.power, compression.flow, discharge.T), discharge
+def _between(narrow: Array, wide: Array) -> Array:
+    """`between` for arrays."""
+    inside = np.sqrt(np.maximum(narrow, PINCH * wide) * wide)
+    return np.where(narrow >= PINCH * wide, inside, 0.5 * (narrow / PINCH**0.5 + PINCH**0.5 * wide))
+
+
+def _within_reach(setting: float, difference: Array, share: float) -> Array:
+    """`within_reach` for arrays."""
+    allowed = share * np.maximum(difference, 0.0)
+    if setting == math.inf:
+        return np.asarray(allowed)
+    low, high = (1 - ROUNDING) * setting, (1 + ROUNDING) * setting
+    over = np.clip(allowed, low, high) - low
+    return np.where(allowed < low, allowed, np.clip(allowed, low, high) - over**2 / (4 * ROUNDING * setting))
 
 
 def _ends(values: Sequence[float], more: float) -> Ends:
     low, high = min(values), max(values)
+    if more and high - low < 1e-12 and more < 0.5:
+        return low, low
     slack = more * (1.0 + 0.1 * (high - low))
     return low - slack, high + slack
-
-
-def _spread(ends: Ends, count: int) -> list[float]:
-    low, high = ends
-    return [float(v) for v in 0.5 * (low + high) + 0.5 * (high - low) * nodes(count)]
-
-
-def _derived(series: Array, axis: int) -> Array:
-    """The series of the derivative by the scaled variable of `axis`, with as many terms."""
-    padded = np.zeros_like(series)
-    inner = chebyshev.chebder(series, axis=axis)
-    padded[tuple(slice(0, n) for n in inner.shape)] = inner
-    return padded

@@ -41,9 +41,9 @@ class Balance:
     Temperatures in K, pressures in Pa absolute, heat and power in W. `evaporating_temperature` and
     `condensing_temperature` are dew points at the evaporator outlet and the condenser inlet, the latter None above the
     critical point; `source_drive` and `sink_drive` the refrigerant temperatures that drive the exchangers, for blends
-    means along them. `superheat` (K) is that at the evaporator outlet; `share` is the manipulated share of the
-    head-pressure control, `sink_fan_share` and `sink_flow_share` its shares of fan power and flow. `jacobian` and
-    `unknowns` start a neighbouring solution.
+    means along them. `superheat` (K) is that at the evaporator outlet, and `dry_share` the share (0-1) of the
+    evaporator's surface that gives it; `share` is the manipulated share of the head-pressure control, `sink_fan_share`
+    and `sink_flow_share` its shares of fan power and flow. `jacobian` and `unknowns` start a neighbouring solution.
     """
 
     regime: str
@@ -58,6 +58,7 @@ class Balance:
     sink_inlet_temperature: float
     sink_outlet_temperature: float
     superheat: float
+    dry_share: float
     share: float
     sink_fan_share: float
     sink_flow_share: float

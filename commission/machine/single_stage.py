@@ -13,11 +13,11 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
-from commission.machine.circuit import Circuit, Parts, SuctionLine
+from commission.machine.circuit import Circuit, Parts, SuctionLine, between, positive, within_reach
 from commission.machine.compressor import Compression
 from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
-from commission.machine.solver import Solution, solve
+from commission.machine.solver import Residuals, Solution, solve
 from commission.properties import State
 
 FREE = "free condensing"
@@ -27,23 +27,26 @@ LIMITED = "suction pressure limited"
 RESTRICTED = "fixed restriction"
 SHORT = "valve at its limit"
 REGULATED = "suction pressure regulated"
-GAS_SHARE = 0.1
-"""Conductance of a surface that only superheats gas, over that of a wetted one (common practice, no source)."""
+COLDEST = 230.0
+"""Temperature in K that no liquid has as it enters a condenser; a trial far from the balance could come to less."""
 
 
 @dataclass(frozen=True, slots=True)
 class SingleStage(Parts):
     """One compressor, evaporator and condenser.
 
-    With `head_pressure` the condensing temperature may be held. `greatest_evaporating` is the dew point (K) above which
-    the valve closes (maximum operating pressure): the evaporator then starves and its superheat rises. `restriction` is
-    the effective area (m2) of an orifice or capillary; the superheat then follows from it, and `superheat` holds where
-    all of the surface is at work. `greatest_feed` is the effective area (m2) of the valve when it is fully open,
-    together with the line and drier before it; None where it never limits. `flash` is the share of vapour (0-1) in what
-    reaches the valve, 0 in a healthy circuit, as from a condenser that lacks refrigerant once the receiver is empty;
-    `subcooling` is of no account then.
+    With `subcooling_share` the liquid is cooled by no more than that share of the difference between its bubble
+    point and the medium as it enters: it never leaves colder than the medium, and a small load cools it less. Where
+    nothing but this difference limits it (no receiver) `subcooling` is infinite. With `head_pressure` the
+    condensing temperature may be held. `greatest_evaporating` is the dew point (K) above which the valve closes
+    (maximum operating pressure): the evaporator then starves and its superheat rises. `restriction` is the
+    effective area (m2) of an orifice or capillary; the superheat then follows from it. `greatest_feed` is the
+    effective area (m2) of the valve when it is fully open, together with the line and drier before it; None where
+    it never limits. `flash` is the share of vapour (0-1) in what reaches the valve, 0 in a healthy circuit, as from
+    a condenser that lacks refrigerant once the receiver is empty; subcooling is then 0.
     """
 
+    subcooling_share: float | None = None
     head_pressure: HeadPressure | None = None
     greatest_evaporating: float | None = None
     restriction: float | None = None
@@ -56,7 +59,7 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: no balance within the range of the property data; the message says why.
         """
-        return _balance(_Circuit(self, media), start)
+        return _balance(CondenserCircuit(self, media), start)
 
     def operate(self, media: Media, start: Balance | None = None) -> OperatingPoint:
         """The balance at this condition with all states.
@@ -64,15 +67,12 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: as `balance`.
         """
-        circuit = _Circuit(self, media)
-        balance = _balance(circuit, start)
-        return (circuit if balance.superheat == self.superheat else circuit.with_superheat(balance.superheat)).point(
-            balance
-        )
+        circuit = CondenserCircuit(self, media)
+        return circuit.point(_balance(circuit, start))
 
     def cycle(self, evaporating: float, condensing: float, media: Media) -> tuple[Compression, float, float]:
         """Compression, heat taken up and heat given up by the refrigerant (W) at given dew points (K): no balance."""
-        return _Circuit(self, media).cycle(evaporating, condensing)
+        return CondenserCircuit(self, media).cycle(evaporating, condensing)
 
     def compressor_alone(
         self, evaporating: float, condensing: float, superheat: float, subcooling: float, media: Media
@@ -81,10 +81,8 @@ class SingleStage(Parts):
 
         The capacity counts all the superheat to the suction port (EN 12900); there are no line losses.
         """
-        alone = replace(
-            self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine(), discharge_line_loss=0.0
-        )
-        compression, source, _ = _Circuit(alone, media).cycle(evaporating, condensing)
+        alone = replace(self._as_catalogued(superheat, subcooling), discharge_line_loss=0.0)
+        compression, source, _ = CondenserCircuit(alone, media).cycle(evaporating, condensing)
         return compression, source
 
     def restriction_for(self, media: Media) -> float:
@@ -96,7 +94,7 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: as `balance`.
         """
-        circuit = _Circuit(replace(self, restriction=None, greatest_feed=None), media)
+        circuit = CondenserCircuit(replace(self, restriction=None, greatest_feed=None), media)
         balance = _balance(circuit, None)
         return balance.compression.flow / circuit.flow_per_area(
             balance.evaporating_temperature, circuit.second(balance)
@@ -112,11 +110,16 @@ class SingleStage(Parts):
         Raises:
             NotCalculatedError: no balance within the range of the property data.
         """
-        unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine())
-        return _Circuit(unit, media).condensing_side(evaporating, start)
+        return CondenserCircuit(self._as_catalogued(superheat, subcooling), media).condensing_side(evaporating, start)
+
+    def _as_catalogued(self, superheat: float, subcooling: float) -> SingleStage:
+        """The machine with the superheat and subcooling (K) of a catalogue, and without a suction line."""
+        return replace(
+            self, superheat=superheat, subcooling=subcooling, subcooling_share=None, suction_line=SuctionLine()
+        )
 
 
-def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
+def _balance(circuit: CondenserCircuit, start: Balance | None) -> Balance:
     """The balance with the suction pressure limited where the free one would be above the limit of the valve."""
     if circuit.machine.restriction is not None:
         return circuit.restricted(start)
@@ -131,25 +134,25 @@ def _balance(circuit: _Circuit, start: Balance | None) -> Balance:
     return circuit.starved(limit)
 
 
-def _within_feed(circuit: _Circuit, area: float, start: Balance | None) -> Balance:
+def _within_feed(circuit: CondenserCircuit, area: float, start: Balance | None) -> Balance:
     """The balance with a valve that passes no more than its full opening: beyond it the evaporator is short of liquid
     and its superheat rises as with a fixed restriction of that area."""
     machine, media = circuit.machine, circuit.media
     short = start is not None and start.regime == SHORT
-    wide = _Circuit(replace(machine, greatest_feed=None), media)
+    wide = CondenserCircuit(replace(machine, greatest_feed=None), media)
     balance = _balance(wide, None if short else start)
     if balance.compression.flow <= area * wide.flow_per_area(balance.evaporating_temperature, wide.second(balance)):
         return balance
-    narrow = _Circuit(replace(machine, greatest_feed=None, restriction=area), media)
+    narrow = CondenserCircuit(replace(machine, greatest_feed=None, restriction=area), media)
     return replace(narrow.restricted(start if short else None), regime=SHORT)
 
 
-def _high_side_control(circuit: _Circuit, start: Balance | None) -> Balance:
+def _high_side_control(circuit: CondenserCircuit, start: Balance | None) -> Balance:
     """Free where the condensing temperature stays above the setting of the head pressure, held below."""
     control = circuit.machine.head_pressure
     if control is None:
         return circuit.free(1.0, FREE, start)
-    likely = start.regime.endswith(HELD) if start is not None else circuit.guess()[1] < control.hold
+    likely = start.regime.endswith(HELD) if start is not None else circuit.guess() < control.hold
     if likely:
         held = circuit.held(control, start if start is not None and start.regime.endswith(HELD) else None)
         if held is not None:
@@ -165,7 +168,14 @@ def _high_side_control(circuit: _Circuit, start: Balance | None) -> Balance:
     return held
 
 
-class _Circuit(Circuit):
+def _solved(gaps: Residuals, guess: tuple[float, ...], start: Balance | None, largest_step: float = 8.0) -> Solution:
+    """The solution from a neighbouring balance with the same unknowns, else from the guess."""
+    if start is not None and (not guess or len(start.unknowns) == len(guess)):
+        return solve(gaps, start.unknowns, jacobian=start.jacobian, largest_step=largest_step)
+    return solve(gaps, guess, largest_step=largest_step)
+
+
+class CondenserCircuit(Circuit):
     """Circuit with a condenser; the second unknown is its condensing temperature (dew, K)."""
 
     machine: SingleStage
@@ -183,7 +193,7 @@ class _Circuit(Circuit):
     def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
         """Dew and bubble point of the condenser."""
         fluid, condensing = self.machine.refrigerant, self.second(balance)
-        dew, bubble = fluid.dew(condensing), fluid.bubble(self._bubble_temperature(condensing))
+        dew, bubble = fluid.dew(condensing), fluid.bubble(self.bubble_temperature(condensing))
         return (
             StatePoint("4", "condenser, dew point", dew.p, dew.h, dew.T, dew.s),
             StatePoint("5", "condenser, bubble point", bubble.p, bubble.h, bubble.T, bubble.s),
@@ -195,22 +205,50 @@ class _Circuit(Circuit):
             m, fluid = self.machine, self.machine.refrigerant
             pressure = fluid.dew_pressure(condensing)
             if m.flash:
-                bubble, dew = fluid.bubble(self._bubble_temperature(condensing)), fluid.dew(condensing)
+                bubble, dew = fluid.bubble(self.bubble_temperature(condensing)), fluid.dew(condensing)
                 liquid = fluid.throttled(pressure, bubble.h + m.flash * (dew.h - bubble.h))
             else:
-                liquid = fluid.liquid(self._bubble_temperature(condensing) - m.subcooling, pressure)
+                liquid = self.liquid(condensing, self.subcooled(condensing))
             discharge = fluid.dew_pressure(condensing + m.discharge_line_loss) if m.discharge_line_loss else pressure
             self._high[condensing] = (discharge + m.gas_pressure, liquid)
         return self._high[condensing]
 
-    def sink_drive(self, condensing: float) -> float:
-        """Temperature that drives the condenser: for blends the mean of dew and bubble point."""
+    def liquid(self, condensing: float, subcooling: float) -> State:
+        """Liquid below its bubble point by `subcooling` (K)."""
         fluid = self.machine.refrigerant
+        return fluid.liquid(self.bubble_temperature(condensing) - subcooling, fluid.dew_pressure(condensing))
+
+    def subcooled(self, condensing: float) -> float:
+        """Subcooling in K of the liquid that a condenser at this dew point (K) gives."""
+        m, sink = self.machine, self.media.sink
+        if m.flash or m.subcooling_share is None:
+            return 0.0 if m.flash else m.subcooling
+        entering = sink.temperature
+        if sink.by_outlet:  # the inlet that goes with the heat of the exchanger, which is that of the balance
+            rise = m.condenser.heat_per_kelvin(sink) / sink.capacity_rate
+            entering = max(entering - rise * (self.sink_drive(condensing) - entering), COLDEST)
+        difference = max(self.bubble_temperature(condensing) - entering, 0.0)
+        return within_reach(m.subcooling, difference, m.subcooling_share)
+
+    def subcooling(self, balance: Balance) -> float | None:
+        """Subcooling in K of the liquid before the valve."""
+        return self.subcooled(self.second(balance))
+
+    def sink_drive(self, condensing: float) -> float:
+        """Temperature that drives the condenser.
+
+        For blends it lies above the entering medium by the geometric mean of the differences of dew and bubble point,
+        so that liquid never comes near it; with a medium known by its outlet it is the mean of both.
+        """
+        sink, fluid = self.media.sink, self.machine.refrigerant
         if not fluid.is_blend:
             return condensing
-        return 0.5 * (condensing + self._bubble_temperature(condensing))
+        bubble = self.bubble_temperature(condensing)
+        if sink.by_outlet:
+            return 0.5 * (condensing + bubble)
+        return sink.temperature + between(bubble - sink.temperature, condensing - sink.temperature)
 
-    def _bubble_temperature(self, condensing: float) -> float:
+    def bubble_temperature(self, condensing: float) -> float:
         """Bubble point in K at the dew pressure of `condensing`."""
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
@@ -231,25 +269,25 @@ class _Circuit(Circuit):
         """Both temperatures follow the exchangers."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            _, taken, given = self.cycle(x[0], x[1])
-            return self.source_gap(x[0], x[1], taken), self.sink_gap(x[1], given, share)
+            (evaporating, superheat), condensing = self.controlled(x), x[-1]
+            given = self.cycle(evaporating, condensing, superheat)[2]
+            return *self.low_gaps(x, evaporating, condensing, superheat), self.sink_gap(condensing, given, share)
 
-        near = start is not None and len(start.unknowns) == 2
-        guess = start.unknowns if near and start is not None else self.guess()
-        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self.result(solution.x[0], solution.x[1], share, regime, solution)
+        solution = _solved(gaps, (*self.low_guess(), self.guess()), start)
+        evaporating, superheat = self.controlled(solution.x)
+        return self.result(evaporating, solution.x[-1], superheat, share, regime, solution)
 
     def held(self, control: HeadPressure, start: Balance | None) -> Balance | None:
         """Condensing temperature held; None where the condenser would need more than its full share."""
         condensing = control.hold
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            return (self.source_gap(x[0], condensing, self.cycle(x[0], condensing)[1]),)
+            evaporating, superheat = self.controlled(x)
+            return self.low_gaps(x, evaporating, condensing, superheat)
 
-        near = start is not None and len(start.unknowns) == 1
-        guess = start.unknowns if near and start is not None else self.guess()[:1]
-        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        given = self.cycle(solution.x[0], condensing)[2]
+        solution = _solved(gaps, self.low_guess(), start)
+        evaporating, superheat = self.controlled(solution.x)
+        given = self.cycle(evaporating, condensing, superheat)[2]
         difference = self.sink_drive(condensing) - self.media.sink.temperature
         if difference <= 0:
             return None
@@ -264,29 +302,7 @@ class _Circuit(Circuit):
             return None
         if share == control.least_share:
             return self.free(share, LOWEST, None)
-        return self.result(solution.x[0], condensing, share, HELD, solution)
-
-    def with_superheat(self, superheat: float) -> _Circuit:
-        """The same circuit with another superheat (K) at the evaporator outlet."""
-        return _Circuit(replace(self.machine, superheat=superheat), self.media)
-
-    def superheat_gap(self, superheat: float, evaporating: float, condensing: float) -> float:
-        """Superheat that the dry part of the surface gives less the one tried, in tens of kelvin.
-
-        The share of surface that is wetted is the conductance that the heat needs over the one there is. The rest
-        superheats the gas towards the medium with `GAS_SHARE` of the conductance, and nothing at a share of 1, so that
-        the superheat is then the one that is held.
-        """
-        machine, source = self.machine, self.media.source
-        whole = machine.evaporator.conductance_at(source.volume_flow)
-        one = self.with_superheat(superheat)
-        compression, taken, _ = one.cycle(evaporating, condensing)
-        drive = one.source_drive(evaporating, condensing)
-        dry = max(1 - machine.evaporator.conductance_for(source, taken, drive) / whole, -0.5)
-        cp = (one.low_side(evaporating)[0].h - machine.refrigerant.dew(evaporating).h) / superheat
-        reach = -math.expm1(-GAS_SHARE * whole * dry / (compression.flow * cp))
-        wanted = machine.superheat + (source.temperature - evaporating - machine.superheat) * reach
-        return (wanted - superheat) / 10.0
+        return self.result(evaporating, condensing, superheat, share, HELD, solution)
 
     def flow_per_area(self, evaporating: float, condensing: float) -> float:
         """Flow in kg/s through each m2 of effective area of a fixed restriction."""
@@ -303,55 +319,64 @@ class _Circuit(Circuit):
         assert area is not None
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            evaporating, condensing, superheat = x
-            one = self.with_superheat(superheat)
-            compression, _, given = one.cycle(evaporating, condensing)
-            through = area * one.flow_per_area(evaporating, condensing)
+            condensing, superheat = x[-2:]
+            evaporating = self.dry_out(x, superheat)
+            compression, _, given = self.cycle(evaporating, condensing, superheat)
+            through = area * self.flow_per_area(evaporating, condensing)
             return (
-                self.superheat_gap(superheat, evaporating, condensing),
-                one.sink_gap(condensing, given, 1.0),
+                *self.low_gaps(x, evaporating, condensing, superheat),
+                self.sink_gap(condensing, given, 1.0),
                 math.log(compression.flow / through),
             )
 
-        near = start is not None and len(start.unknowns) == 3
-        jacobian = start.jacobian if near and start is not None else None
         try:
-            guess = start.unknowns if near and start is not None else (*self.free(1.0, FREE, None).unknowns, held)
-            solution = solve(gaps, guess, largest_step=3.0, jacobian=jacobian)
+            near = start is not None and start.regime == RESTRICTED
+            guess = () if near else (*self.low_guess(), self.free(1.0, FREE, None).unknowns[-1], held)
+            solution = _solved(gaps, guess, start if near else None, largest_step=3.0)
         except NotCalculatedError as error:
             raise NotCalculatedError(
                 f"with the fixed restriction there is no balance with superheated gas: at this condition it would feed "
                 f"liquid to the compressor, or starve the evaporator altogether ({error})"
             ) from error
         control = self.machine.head_pressure
-        if control is not None and solution.x[1] < control.hold:
+        condensing, superheat = solution.x[-2:]
+        if control is not None and condensing < control.hold:
             raise NotCalculatedError("a fixed restriction together with a held head pressure is not carried")
-        return self.with_superheat(solution.x[2]).result(solution.x[0], solution.x[1], 1.0, RESTRICTED, solution)
+        evaporating = self.dry_out(solution.x, superheat)
+        return self.result(evaporating, condensing, superheat, 1.0, RESTRICTED, solution)
+
+    def dry_out(self, low: Sequence[float], superheat: float) -> float:
+        """Evaporating temperature (K) at which the mean difference of the dry zone is the first of the unknowns."""
+        return self.entering(low) - 0.5 * (superheat + math.hypot(superheat, 2.0 * positive(low[0])))
 
     def starved(self, evaporating: float) -> Balance:
         """Evaporating temperature held down by the valve; the superheat follows from the surface that stays dry."""
         machine, control = self.machine, self.machine.head_pressure
 
-        def both(x: Sequence[float]) -> Sequence[float]:
-            one = self.with_superheat(x[0])
-            return self.superheat_gap(x[0], evaporating, x[1]), one.sink_gap(x[1], one.cycle(evaporating, x[1])[2], 1.0)
+        def superheat(low: Sequence[float]) -> float:
+            difference = self.entering(low) - evaporating
+            return difference - positive(low[0]) ** 2 / difference
 
-        guess = (machine.superheat + 2.0, self.guess()[1])
-        solution = solve(both, guess, largest_step=4.0)
-        superheat, condensing = solution.x
+        def both(x: Sequence[float]) -> Sequence[float]:
+            condensing, here = x[-1], superheat(x)
+            given = self.cycle(evaporating, condensing, here)[2]
+            return *self.low_gaps(x, evaporating, condensing, here), self.sink_gap(condensing, given, 1.0)
+
+        solution = solve(both, (*self.low_guess(), self.guess()), largest_step=4.0)
+        condensing = solution.x[-1]
         if control is None or condensing >= control.hold:
-            return self.with_superheat(superheat).result(evaporating, condensing, 1.0, LIMITED, solution)
+            return self.result(evaporating, condensing, superheat(solution.x), 1.0, LIMITED, solution)
         solution = solve(
-            lambda x: (self.superheat_gap(x[0], evaporating, control.hold),), (superheat,), largest_step=4.0
+            lambda x: self.low_gaps(x, evaporating, control.hold, superheat(x)), solution.x[:-1], largest_step=4.0
         )
-        one = self.with_superheat(solution.x[0])
-        given = one.cycle(evaporating, control.hold)[2]
-        per_kelvin = given / (one.sink_drive(control.hold) - self.media.sink.temperature)
+        found = superheat(solution.x)
+        given = self.cycle(evaporating, control.hold, found)[2]
+        per_kelvin = given / (self.sink_drive(control.hold) - self.media.sink.temperature)
         sink = self.media.sink.settled(given)
         share = share_for(control.by, per_kelvin, machine.condenser, sink, control.least_share)
         if share is None or share == control.least_share:
             raise NotCalculatedError("no balance with suction pressure limited and head pressure held together")
-        return one.result(evaporating, control.hold, share, f"{LIMITED}, {HELD}", solution)
+        return self.result(evaporating, control.hold, found, share, f"{LIMITED}, {HELD}", solution)
 
     def condensing_side(self, evaporating: float, start: Balance | None) -> Balance:
         """Only the condenser balances; the evaporating temperature is given."""
@@ -359,26 +384,24 @@ class _Circuit(Circuit):
         def gaps(x: Sequence[float]) -> Sequence[float]:
             return (self.sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
 
-        near = start is not None and len(start.unknowns) == 1
-        guess = start.unknowns if near and start is not None else self.guess()[1:]
-        solution = solve(gaps, guess, jacobian=start.jacobian if near and start is not None else None)
-        return self.result(evaporating, solution.x[0], 1.0, FREE, solution)
+        solution = _solved(gaps, (self.guess(),), start)
+        return self.result(evaporating, solution.x[0], self.machine.superheat, 1.0, FREE, solution)
 
-    def guess(self) -> tuple[float, float]:
-        """Evaporating and condensing temperature (K) to start from."""
+    def guess(self) -> float:
+        """Condensing temperature (K) to start from."""
         source, sink = self.media.source.temperature, self.media.sink.temperature
-        evaporating = source - 8.0
-        highest = 0.94 * self.machine.refrigerant.T_critical
-        return evaporating, min(max(sink + 10.0, evaporating + 15.0), highest)
+        return min(max(sink + 10.0, source + 7.0), 0.94 * self.machine.refrigerant.T_critical)
 
-    def result(self, evaporating: float, condensing: float, share: float, regime: str, solution: Solution) -> Balance:
+    def result(
+        self, evaporating: float, condensing: float, superheat: float, share: float, regime: str, solution: Solution
+    ) -> Balance:
         """The balance at a solution."""
         control = self.machine.head_pressure
         flow = flow_share(control, share)
-        compression, source, sink = self.cycle(evaporating, condensing)
-        settled = self.media.sink.settled(sink)
+        compression, source, sink = self.cycle(evaporating, condensing, superheat)
+        settled, inlet = self.media.sink.settled(sink), self.media.source.inlet(-source)
         through = replace(settled, capacity_rate=flow * settled.capacity_rate)
-        suction, limit = self.low_side(evaporating)[1].p, self.machine.suction_regulator
+        suction, limit = self.low_side(evaporating, superheat)[1].p, self.machine.suction_regulator
         if limit is not None and suction >= limit * (1 - 1e-9):
             regime = f"{REGULATED}, {regime}"
         return Balance(
@@ -388,12 +411,13 @@ class _Circuit(Circuit):
             compression=compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, condensing),
+            source_drive=self.source_drive(evaporating, condensing, inlet),
             sink_drive=self.sink_drive(condensing),
-            source_inlet_temperature=self.media.source.inlet(-source),
+            source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
-            superheat=self.machine.superheat,
+            superheat=superheat,
+            dry_share=self.dry_share(evaporating, condensing, superheat, inlet),
             share=share,
             sink_fan_share=fan_share(control, share),
             sink_flow_share=flow,

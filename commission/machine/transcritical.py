@@ -98,31 +98,32 @@ class GasCoolerCircuit(Circuit):
             self._high[key] = p, outlet_state(self.machine.refrigerant, second, p)
         return self._high[key]
 
-    def conductance(self, evaporating: float, outlet: float) -> float:
+    def conductance(self, evaporating: float, outlet: float, superheat: float | None = None) -> float:
         """Conductance in W/K that the gas cooler would need."""
-        compression, _, heat = self.cycle(evaporating, outlet)
+        compression, _, heat = self.cycle(evaporating, outlet, superheat)
         end = self.high_side(evaporating, outlet)[1]
         sink = self.media.sink.settled(heat)
         return needed_conductance(self.machine.refrigerant, compression.flow, compression.discharge_enthalpy, end, sink)
 
-    def gap(self, evaporating: float, outlet: float) -> float:
+    def gap(self, evaporating: float, outlet: float, superheat: float | None = None) -> float:
         """Conductance that is needed over the one there is, as a logarithm."""
-        flow = self.media.sink.settled(self.cycle(evaporating, outlet)[2]).volume_flow
-        return math.log(self.conductance(evaporating, outlet) / self.machine.condenser.conductance_at(flow))
+        flow = self.media.sink.settled(self.cycle(evaporating, outlet, superheat)[2]).volume_flow
+        return math.log(self.conductance(evaporating, outlet, superheat) / self.machine.condenser.conductance_at(flow))
 
     def solve(self, start: Balance | None) -> Balance:
         """Both unknowns, from a neighbouring balance or from the media."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            _, taken, _ = self.cycle(x[0], x[1])
-            return self.source_gap(x[0], x[1], taken), self.gap(x[0], x[1])
+            evaporating, superheat = self.controlled(x)
+            return *self.low_gaps(x, evaporating, x[-1], superheat), self.gap(evaporating, x[-1], superheat)
 
         if start is not None:
             try:
                 return self._outcome(solve(gaps, start.unknowns, jacobian=start.jacobian))
             except NotCalculatedError:
                 pass  # the neighbour was too far off; start from the media instead
-        return self._outcome(solve(gaps, self.guess(), largest_step=5.0, evaluations=200))
+        guess = *self.low_guess(), self.guess()
+        return self._outcome(solve(gaps, guess, largest_step=5.0, evaluations=200))
 
     def gas_cooler_side(self, evaporating: float, start: Balance | None) -> Balance:
         """Only the gas cooler balances; the evaporating temperature is given."""
@@ -130,20 +131,25 @@ class GasCoolerCircuit(Circuit):
         def gaps(x: Sequence[float]) -> Sequence[float]:
             return (self.gap(evaporating, x[0]),)
 
-        guess = start.unknowns[-1:] if start is not None else self.guess()[1:]
+        guess = start.unknowns[-1:] if start is not None else (self.guess(),)
         solution = solve(gaps, guess, largest_step=5.0, evaluations=200)
-        return self._outcome(replace(solution, x=(evaporating, solution.x[0])))
+        return self._outcome(solution, evaporating)
 
-    def guess(self) -> tuple[float, float]:
-        """Evaporating temperature and gas-cooler outlet (K) to start from."""
-        source, sink = self.media.source.temperature, self.media.sink
+    def subcooling(self, balance: Balance) -> float | None:
+        """None: the gas-cooler outlet is solved for, it is not subcooled by a given difference."""
+        return None
+
+    def guess(self) -> float:
+        """Gas-cooler outlet (K) to start from."""
+        sink = self.media.sink
         cold = sink.temperature - (30.0 if sink.by_outlet else 0.0)
-        return source - 8.0, max(cold, 278.15) + 4.0
+        return max(cold, 278.15) + 4.0
 
-    def _outcome(self, solution: Solution) -> Balance:
-        evaporating, outlet = solution.x
-        compression, source, sink = self.cycle(evaporating, outlet)
-        p = self.pressure(evaporating, outlet)
+    def _outcome(self, solution: Solution, given: float | None = None) -> Balance:
+        evaporating, superheat = self.controlled(solution.x) if given is None else (given, self.machine.superheat)
+        outlet = solution.x[-1]
+        compression, source, sink = self.cycle(evaporating, outlet, superheat)
+        p, inlet = self.pressure(evaporating, outlet), self.media.source.inlet(-source)
         through = self.media.sink.settled(sink)
         critical = self.machine.refrigerant.p_critical
         condensing = self.machine.refrigerant.dew_temperature(p) if p < 0.95 * critical else None
@@ -154,12 +160,13 @@ class GasCoolerCircuit(Circuit):
             compression=compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, outlet),
+            source_drive=self.source_drive(evaporating, outlet, inlet),
             sink_drive=outlet,
-            source_inlet_temperature=self.media.source.inlet(-source),
+            source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
-            superheat=self.machine.superheat,
+            superheat=superheat,
+            dry_share=self.dry_share(evaporating, outlet, superheat, inlet) if given is None else 0.0,
             share=1.0,
             sink_fan_share=1.0,
             sink_flow_share=1.0,

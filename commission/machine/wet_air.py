@@ -72,10 +72,10 @@ def _wet_heat(stream: Stream, refrigerant: float, conductance: float, air_share:
     return stream.mass_flow * -math.expm1(-transfer / stream.mass_flow) * drive
 
 
-def coil_heats(streams: Sequence[Stream], refrigerant: Array, conductances: Array, air_share: float) -> Array:
+def coil_heats(streams: Sequence[Stream], refrigerant: Array, conductance: Array, air_share: float) -> Array:
     """`coil_heat` of many air streams: the same equations for arrays.
 
-    `refrigerant` in K has the shape (any, streams, any); there is one of the `conductances` for each stream.
+    `refrigerant` in K has the shape (any, streams, any), and so has the dry `conductance` in W/K, or one that spreads.
     """
     airs = [s.air for s in streams]
     assert all(a is not None for a in airs)
@@ -83,7 +83,6 @@ def coil_heats(streams: Sequence[Stream], refrigerant: Array, conductances: Arra
     warm, rate, flow = (
         np.array([getattr(s, name) for s in streams])[:, None] for name in ("temperature", "capacity_rate", "mass_flow")
     )
-    conductance = conductances[:, None]
     dry = rate * -np.expm1(-conductance / rate) * (warm - refrigerant)
     x = np.clip((FREEZING - refrigerant) / FROST_SPAN, 0.0, 1.0)
     fusion = FUSION * x * x * (3 - 2 * x)

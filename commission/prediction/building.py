@@ -18,9 +18,8 @@ from commission.machine import (
     SuctionLine,
     Transcritical,
     air_stream,
-    coil_conductance,
-    conductance_for,
     liquid_stream,
+    within_reach,
 )
 from commission.prediction.compressors import compressor_of
 from commission.prediction.facts import CONDENSER_FAN, EVAPORATOR_FAN, Facts
@@ -81,7 +80,7 @@ class Fans:
 @dataclass(frozen=True, slots=True)
 class Rated:
     """The condition that levels belong to: media temperatures (K), expected heat (W), flows (m3/s), humidity,
-    speed (1/s)."""
+    speed (1/s), and what the source enters above the dew point (K), None where that is not known beforehand."""
 
     source_temperature: float
     sink_temperature: float
@@ -91,6 +90,7 @@ class Rated:
     sink_flow: float
     source_humidity: float
     speed: float | None = None
+    source_difference: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -203,20 +203,21 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         NotCalculatedError: a stated rating cannot be, for example more heat than its air flow carries.
     """
     system = facts.system
-    stated_superheat = system.expansion.superheat if system.expansion else None
-    superheat = a["evaporator_superheat"] if stated_superheat is None else stated_superheat + a["superheat_departure"]
-    line, surroundings = suction_line(facts, a, rated, superheat)
+    superheat = superheat_setting(facts, a)
+    line, surroundings = suction_line(facts, a)
     compressor = compressor_of(facts, a, levels.swept_flow, levels.isentropic, rated.speed)
     exponent = a["air_side_exponent"]
-    evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a))
+    gas_share, superheat_share = a["dry_surface_share"], a["greatest_superheat_share"]
+    evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a), gas_share)
     condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)
     regulator, greatest = suction_limits(facts, a)
     machine: Machine
     if facts.transcritical:
         pressure = gas_cooler_pressure(facts, a)
         machine = Transcritical(
-            facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, regulator, pressure=pressure
-        )
+            facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, regulator, pressure=pressure,
+            superheat_share=superheat_share,
+        )  # fmt: skip
     else:
         machine = SingleStage(
             refrigerant=facts.fluid,
@@ -224,10 +225,12 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
             evaporator=evaporator,
             condenser=condenser,
             superheat=superheat,
-            subcooling=a["liquid_subcooling"],
+            subcooling=a["liquid_subcooling"] if system.receiver is not None else math.inf,
+            subcooling_share=subcooling_share(facts, a, condenser, rated),
             suction_line=line,
             discharge_line_loss=a["discharge_line_loss"],
             suction_regulator=regulator,
+            superheat_share=superheat_share,
             head_pressure=head_pressure(facts, a),
             greatest_evaporating=greatest,
         )
@@ -240,6 +243,30 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
     )
+
+
+def superheat_setting(facts: Facts, a: Mapping[str, float]) -> float:
+    """Superheat in K that the valve is set to, as it may really be held."""
+    stated = facts.system.expansion.superheat if facts.system.expansion else None
+    return a["evaporator_superheat"] if stated is None else stated + a["superheat_departure"]
+
+
+MOST_COOLED = 0.85
+"""Greatest subcooling over the difference between bubble point and entering medium (common practice, no source)."""
+
+
+def subcooling_share(facts: Facts, a: Mapping[str, float], condenser: Exchanger, rated: Rated) -> float:
+    """Greatest subcooling over the difference between bubble point and entering medium.
+
+    Without a receiver this share is what it is at the rated point, at the difference with which this condenser gives
+    the rated heat: the liquid fills the same part of the condenser at any load.
+    """
+    if facts.system.receiver is not None:
+        return MOST_COOLED
+    medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
+    mean = rated.sink_heat / condenser.heat_per_kelvin(medium)
+    difference = mean - 0.5 * facts.glide(rated.sink_temperature + mean)
+    return max(within_reach(a["liquid_subcooling"], difference, MOST_COOLED) / difference, 0.0)
 
 
 def suction_limits(facts: Facts, a: Mapping[str, float]) -> tuple[float | None, float | None]:
@@ -313,19 +340,19 @@ def outdoors_is_sink(facts: Facts) -> bool:
     return facts.sink_liquid is None and facts.system.duty in ("cold_storage", "comfort_cooling", "liquid_cooling")
 
 
-def suction_line(
-    facts: Facts, a: Mapping[str, float], rated: Rated, superheat: float
-) -> tuple[SuctionLine, float | None]:
+LINE_DIFFERENCE = 35.0
+"""Difference in K between air and gas to which the assumed superheat of a suction line belongs."""
+
+
+def suction_line(facts: Facts, a: Mapping[str, float]) -> tuple[SuctionLine, float | None]:
     """The suction line, and the temperature (K) around it where that is not the sink's air.
 
-    The pick-up is stated at the rated condition. Where the pipe runs through the air of the sink it follows the
-    difference between that air and the gas; elsewhere it is constant.
+    Where the pipe runs through the air of the sink its heat follows the difference between that air and the gas, as of
+    any insulated pipe: the gas of a freezer picks up more than that of a cold room. In a packaged unit it is constant.
     """
     pick_up = a["suction_line_superheat"]
-    gas = rated.source_temperature - 8.0 + superheat
-    difference = rated.sink_temperature - gas
-    if outdoors_is_sink(facts) and difference > 10.0:
-        return SuctionLine(a["suction_line_loss"], heating_share=pick_up / difference), None
+    if outdoors_is_sink(facts):
+        return SuctionLine(a["suction_line_loss"], heating_share=pick_up / LINE_DIFFERENCE), None
     return SuctionLine(a["suction_line_loss"], warming=pick_up), a["surroundings_temperature"]
 
 
@@ -379,50 +406,3 @@ def _side(
 def air_share(facts: Facts, a: Mapping[str, float]) -> float | None:
     """Share of the air side in the resistance of an air coil that takes heat; None for a liquid."""
     return a["coil_air_share"] if facts.source_liquid is None else None
-
-
-def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: float) -> float | None:
-    """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
-    part = facts.system.evaporator
-    if part.conductance is not None:
-        return part.conductance
-    if part.rating is None:
-        return None
-    rating = part.rating
-    air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
-    medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
-    capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
-    share = air_share(facts, a) if rating.surface != "dry" else None
-    return _rating("evaporator", capacity, rating.temperature_difference, medium, share)
-
-
-def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float) -> float | None:
-    """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
-    part = facts.system.condenser
-    if part.conductance is not None:
-        return part.conductance
-    if part.rating is None:
-        return None
-    rating = part.rating
-    air_on = rating.air_on if rating.air_on is not None else 25.0 + KELVIN
-    medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
-    capacity = rating.capacity * (1.0 + a["condenser_rating_departure"])
-    return _rating("condenser", capacity, rating.temperature_difference, medium)
-
-
-def source_conductance(heat: float, difference: float, medium: Stream, share: float | None) -> float:
-    """Conductance in W/K of an evaporator that takes `heat` (W) at an inlet difference (K), wet coils included.
-
-    Raises:
-        NotCalculatedError: more heat than the medium can give at that difference.
-    """
-    if share is None or medium.air is None:
-        return conductance_for(heat, difference, medium.capacity_rate)
-    return coil_conductance(heat, medium.temperature - difference, medium, share)
-
-
-def _rating(what: str, capacity: float, difference: float, medium: Stream, share: float | None = None) -> float:
-    try:
-        return source_conductance(capacity, difference, medium, share)
-    except NotCalculatedError as error:
-        raise NotCalculatedError(f"the rating of the {what} and the flow cannot both be right: {error}") from None

@@ -110,7 +110,7 @@ def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Foun
     )
     if source.air is not None:
         coil = plan.machine.evaporator
-        conductance = coil.conductance_at(source.volume_flow)
+        conductance = (1 - balance.dry_share) * coil.conductance_at(source.volume_flow)
         left = leaving_air(source, balance.heat_from_source, balance.source_drive, conductance, coil.air_share or 1.0)
         source_out = left.temperature
         found.values["sensible_heat_ratio"] = left.sensible_share
@@ -153,30 +153,6 @@ def beats_carnot(facts: Facts, values: Mapping[str, float]) -> bool:
 def frosts(facts: Facts, point: OperatingPoint) -> bool:
     """Whether an outdoor coil collects frost: its refrigerant is below freezing. In a cold room that is daily work."""
     return heats(facts) and facts.source_liquid is None and point.balance.source_drive < 273.15
-
-
-def too_small_a_load(values: Mapping[str, float], point: OperatingPoint) -> list[str]:
-    """What cannot be where superheat and subcooling are held although the load leaves no room for them.
-
-    At part load the differences between refrigerant and media shrink; gas cannot leave warmer than the medium that
-    heats it, nor liquid colder than the medium that cools it (second law).
-    """
-    found = []
-    gas = values.get("evaporating_temperature", math.nan) + values.get("superheat", math.nan)
-    source, sink = point.balance.source_inlet_temperature, point.balance.sink_inlet_temperature
-    if gas > source:
-        found.append(
-            "the superheat that is held leaves no room at this small load: gas would leave the evaporator at "
-            f"{in_celsius(gas)}, warmer than the {in_celsius(source)} that heat it. Expect less superheat, and do not "
-            "judge it here"
-        )
-    liquid = values.get("liquid_temperature", math.nan)
-    if liquid < sink:
-        found.append(
-            f"the subcooling that is assumed leaves no room at this small load: liquid would be {in_celsius(liquid)}, "
-            f"colder than the {in_celsius(sink)} that cool it. Expect less subcooling, and do not judge it here"
-        )
-    return found
 
 
 def in_celsius(temperature: float) -> str:

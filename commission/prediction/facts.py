@@ -69,6 +69,13 @@ class Facts:
         """The assumption list as plain values."""
         return {key: a.value for key, a in self.assumptions.items()}
 
+    def glide(self, temperature: float) -> float:
+        """Dew point minus bubble point in K at the dew pressure of `temperature` (K); 0 for a pure fluid."""
+        if not self.fluid.is_blend:
+            return 0.0
+        held = min(temperature, 0.9 * self.fluid.T_critical)
+        return held - self.fluid.bubble_temperature(self.fluid.dew_pressure(held))
+
     def origin(self, path: str) -> str:
         """Place in the description, such as `plant.yaml:64`, of a key path below the system."""
         place = self.loaded.where(f"systems.{self.identity}.{path}")

@@ -11,7 +11,7 @@ from commission.errors import CommissionError, InputError, NotCalculatedError, P
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete, with_weather_curve
-from commission.prediction.expected import Found, beats_carnot, expected_values, frosts, too_small_a_load
+from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
 from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system
@@ -276,7 +276,6 @@ class SystemModel:
             warnings.append(
                 "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
             )
-        warnings += too_small_a_load(nominal.values, point)
         warnings += beyond_limits(self.facts, nominal.values, whole)
         if beats_carnot(self.facts, nominal.values):
             warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")

@@ -8,21 +8,30 @@ from dataclasses import dataclass, replace
 from commission.errors import NotCalculatedError
 from commission.machine import SingleStage, Transcritical, conductance_for
 from commission.prediction.building import (
+    KELVIN,
     SINK_HUMIDITY,
     Levels,
     Plan,
     Rated,
     air_share,
     build,
-    condenser_conductance,
-    evaporator_conductance,
     media,
     once_through,
-    source_conductance,
     stream,
+    superheat_setting,
 )
 from commission.prediction.facts import Facts
 from commission.prediction.rated import Case, Datum, cases_of, rated_of, reference, with_data
+from commission.prediction.ratings import (
+    MEAN_BELOW_DEW,
+    RATED_SUPERHEAT,
+    condenser_conductance,
+    evaporator_conductance,
+    rated_superheat,
+    rating_difference,
+    source_conductance,
+    wetted_conductance,
+)
 
 
 @dataclass(frozen=True)
@@ -63,13 +72,30 @@ def prepare(facts: Facts, a: Mapping[str, float]) -> tuple[Problem, Levels]:
 
 
 def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) -> float | None:
+    """Conductance in W/K of the evaporator with all its surface wetted, where it is stated, rated or, for a condensing
+    unit, assumed; None where it must be fitted. A rating has part of the surface dry."""
     known = evaporator_conductance(facts, a, rated.source_flow)
-    if known is not None or case.unit is None:
+    part, share = facts.system.evaporator, a["dry_surface_share"]
+    if part.conductance is not None or (known is None and case.unit is None):
         return known
-    medium = stream(
-        rated.source_temperature, rated.source_flow, facts.source_liquid, rated.source_humidity, facts.pressure
-    )
-    return source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
+    if known is None:
+        medium = stream(
+            rated.source_temperature, rated.source_flow, facts.source_liquid, rated.source_humidity, facts.pressure
+        )
+        known = source_conductance(rated.source_heat, a["source_minus_evaporating"], medium, air_share(facts, a))
+        difference = rated.source_difference
+        assert difference is not None
+        superheat = rated_superheat(a, superheat_setting(facts, a), difference)
+        return wetted_conductance(
+            facts, known, rated.source_heat, rated.source_temperature, difference, share, superheat
+        )
+    rating = part.rating
+    assert rating is not None
+    air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
+    difference = rating_difference(facts)
+    assert difference is not None
+    superheat = RATED_SUPERHEAT * difference
+    return wetted_conductance(facts, known, rating.capacity, air_on, difference, share, superheat)
 
 
 def _missing(
@@ -182,7 +208,7 @@ def _dew_points(
         evaporating = given["evaporating_temperature"]
     else:
         evaporating = rated.source_temperature - assumed("source_minus_evaporating", "source_minus_evaporating")
-        evaporating += 0.35 * _glide(facts, evaporating)
+        evaporating += MEAN_BELOW_DEW * facts.glide(evaporating)
     condensing = given.get("condensing_temperature")
     if condensing is None:
         of, key = sink_difference(facts, case, rated)
@@ -193,7 +219,7 @@ def _dew_points(
         elif of == LIFTED:
             end += known_rise(facts, case, rated) or 0.0
         condensing = end + difference
-        condensing += 0.5 * _glide(facts, condensing)
+        condensing += 0.5 * facts.glide(condensing)
     return evaporating, condensing
 
 
@@ -227,12 +253,6 @@ def known_rise(facts: Facts, case: Case, rated: Rated) -> float | None:
     return rated.sink_heat / medium.capacity_rate
 
 
-def _glide(facts: Facts, temperature: float) -> float:
-    """Dew point minus bubble point in K at the dew pressure of `temperature`; 0 for a pure fluid."""
-    fluid = facts.fluid
-    return temperature - fluid.bubble_temperature(fluid.dew(temperature).p) if fluid.is_blend else 0.0
-
-
 def _conductances(
     problem: Problem, a: Mapping[str, float], rated: Rated, evaporating: float, condensing: float, heat: float
 ) -> tuple[float, float]:
@@ -241,14 +261,14 @@ def _conductances(
     if condenser is None:
         medium = stream(rated.sink_temperature, rated.sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
         condenser = conductance_for(
-            heat, condensing - 0.5 * _glide(facts, condensing) - rated.sink_temperature, medium.capacity_rate
+            heat, condensing - 0.5 * facts.glide(condensing) - rated.sink_temperature, medium.capacity_rate
         )
     evaporator = _evaporator(facts, a, rated, case)
     if evaporator is None:
         medium = stream(
             rated.source_temperature, rated.source_flow, facts.source_liquid, rated.source_humidity, facts.pressure
         )
-        difference = rated.source_temperature - evaporating + 0.35 * _glide(facts, evaporating)
+        difference = rated.source_temperature - evaporating + MEAN_BELOW_DEW * facts.glide(evaporating)
         evaporator = source_conductance(rated.source_heat, difference, medium, air_share(facts, a))
     return condenser, evaporator
 

@@ -18,6 +18,7 @@ from commission.prediction.building import (
 )
 from commission.prediction.compressors import estimate
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
+from commission.prediction.ratings import MEAN_BELOW_DEW, rating_difference
 from commission.properties import moist_air
 
 MARGIN = 0.015
@@ -301,7 +302,21 @@ def rated_of(facts: Facts, a: Mapping[str, float], case: Case) -> Rated:
         unit = stream(sink_temperature, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
         sink_temperature -= heating / unit.capacity_rate
     speed = case.conditions.get("compressor_speed", facts.system.compressor.nominal_speed)
-    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow, wet, speed)
+    difference = _source_difference(facts, a, source_temperature, given)
+    return Rated(source_temperature, sink_temperature, cooling, heating, source_flow, sink_flow, wet, speed, difference)
+
+
+def _source_difference(facts: Facts, a: Mapping[str, float], inlet: float, given: Mapping[str, float]) -> float | None:
+    """What the source enters above the dew point in K, as stated or assumed; None where it only follows."""
+    if "evaporating_temperature" in given:
+        return inlet - given["evaporating_temperature"]
+    if facts.system.evaporator.conductance is not None:
+        return None
+    rated = rating_difference(facts)
+    if rated is not None:
+        return rated
+    assumed = a["source_minus_evaporating"]
+    return assumed - MEAN_BELOW_DEW * facts.glide(inlet - assumed)
 
 
 def _temperatures(facts: Facts, a: Mapping[str, float], case: Case) -> tuple[float, float]:

@@ -24,6 +24,8 @@ GAIN = 0.01
 """Gain in the sum of squares, over their mean, that ends the search: a tenth of a standard uncertainty is then left."""
 SMALL, NEAR = 1e-3, 1.0
 """Step that counts as none, and way over which a Jacobian still holds: standard uncertainties, or logarithms."""
+BEND = 15.0
+"""Scatter, in standard uncertainties, up to which a minimum at a bend of the machine is believed."""
 LONGEST = 0.7
 """Longest step of an unknown; the machine may not be calculable far away."""
 
@@ -95,7 +97,8 @@ class Table:
         """Least squares by Levenberg and Marquardt (Marquardt, SIAM J. Applied Mathematics 11, 1963, 431-441).
 
         The Jacobian learns from each step (Broyden, Mathematics of Computation 19, 1965, 577-593) and is made anew
-        where the way was long. The last one belongs to the minimum within `NEAR`.
+        where the way was long. The last one belongs to the minimum within `NEAR`. At a bend of the machine (a coil that
+        begins to be wet) a minimum is known by a whole round that gains nothing.
 
         Raises:
             NotCalculatedError: no machine is near the start, or the minimum is not found: the points contradict.
@@ -105,7 +108,7 @@ class Table:
         for _ in range(ROUNDS):
             matrix = self._jacobian(x, gaps, points, columns)
             columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
-            origin, learnt = x, matrix
+            origin, before, learnt = x, gaps, matrix
             for _ in range(TRIALS):
                 step = _damped(learnt, gaps, damping)
                 if float(np.abs(step).max()) < 1e-3 * SMALL:
@@ -123,7 +126,9 @@ class Table:
                 damping = 0.2 * damping if damping > 1e-6 else 0.0
                 if float(np.abs(step).max()) < SMALL or self._done(learnt, gaps):
                     break
-            if float(np.abs(x - origin).max()) < NEAR and self._done(matrix, gaps):
+            worth = self._worth(gaps, len(x))
+            stuck = float(before @ before) - float(gaps @ gaps) < worth < GAIN * BEND**2
+            if float(np.abs(x - origin).max()) < NEAR and (stuck or self._done(matrix, gaps)):
                 return x, gaps, plan, points, matrix
         raise NotCalculatedError("the rated points contradict each other: no machine comes near all of them")
 
@@ -131,8 +136,12 @@ class Table:
         """Whether a further step would gain next to nothing beside the scatter of the data."""
         step = np.linalg.lstsq(matrix, -gaps, rcond=None)[0]
         left = gaps + matrix @ step
-        squares = float(gaps @ gaps)
-        return squares - float(left @ left) < GAIN * max(1.0, squares / max(len(gaps) - len(step), 1))
+        return float(gaps @ gaps) - float(left @ left) < self._worth(gaps, len(step))
+
+    @staticmethod
+    def _worth(gaps: Array, unknowns: int) -> float:
+        """Gain in the sum of squares below which a step is not worth taking."""
+        return GAIN * max(1.0, float(gaps @ gaps) / max(len(gaps) - unknowns, 1))
 
     def _jacobian(self, x: Array, gaps: Array, starts: Sequence[Seen], columns: Sequence[int]) -> Array:
         """By differences; `columns` are the unknowns that move a datum, the others are priors alone."""

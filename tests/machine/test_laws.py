@@ -30,7 +30,11 @@ def test_first_law_on_the_circuit(real: Make, cold_room_media: Conditions, name:
         balance, compression = point.balance, point.balance.compression
         given = balance.heat_from_source + point.line_gain + compression.power - compression.shell_loss
         assert balance.heat_to_sink == pytest.approx(given, rel=1e-6)
-        by_source = machine.evaporator.heat_per_kelvin(media.source) * (media.source.temperature - balance.source_drive)
+        outlet = machine.refrigerant.vapour(balance.evaporating_temperature + balance.superheat, point.states[0].p)
+        gas = compression.flow * (outlet.h - machine.refrigerant.dew(balance.evaporating_temperature).h)
+        entering = media.source.temperature - gas / media.source.capacity_rate
+        wetted = machine.evaporator.heat_per_kelvin(media.source, surface_share=1 - balance.dry_share)
+        by_source = wetted * (entering - balance.source_drive) + gas
         by_sink = heat_per_kelvin(None, 1.0, machine.condenser, media.sink) * (
             balance.sink_drive - media.sink.temperature
         )

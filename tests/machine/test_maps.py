@@ -102,7 +102,7 @@ def test_many_coils_are_the_same_as_each() -> None:
     ]
     drives: Array = np.linspace(245.0, 292.0, 40)[None, :] * np.ones((4, 1))
     for share in (0.5, 0.75, 1.0):
-        found = coil_heats(streams, drives, np.array([900.0, 500.0, 700.0, 300.0]), share)
+        found = coil_heats(streams, drives, np.array([[900.0], [500.0], [700.0], [300.0]]), share)
         for i, (stream, conductance) in enumerate(zip(streams, (900.0, 500.0, 700.0, 300.0), strict=True)):
             each = [coil_heat(stream, float(t), conductance, share) for t in drives[i]]
             assert found[i] == pytest.approx(each, rel=1e-9, abs=1e-6)

@@ -60,9 +60,9 @@ def test_above_the_heating_limit(heating: SystemModel) -> None:
 
 
 def test_limit_devices(example: LoadedPlant) -> None:
-    """In a room of −36 °C the freezer's low-pressure control (0.1 bar g) and its discharge thermostat (120 °C) stop it;
+    """In a room of −38 °C the freezer's low-pressure control (0.1 bar g) and its discharge thermostat (120 °C) stop it;
     each is named with both figures."""
-    found = fit(example, "freezer-room").predict({OUTDOOR: KELVIN - 36})
+    found = fit(example, "freezer-room").predict({OUTDOOR: KELVIN - 38})
     hot = found.expected["discharge_temperature"].value - KELVIN
     assert found.expected["suction_pressure"].value < example.barometric_pressure + 0.1e5
     assert hot > 120

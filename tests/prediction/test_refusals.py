@@ -25,7 +25,7 @@ def models(example: LoadedPlant) -> dict[str, SystemModel]:
 @pytest.mark.parametrize(
     ("system", "condition", "why"),
     [
-        ("shower-water", {SOURCE: KELVIN + 45}, "the source is so warm that evaporation would come to the critical"),
+        ("shower-water", {SOURCE: KELVIN + 60}, "the source is so warm that evaporation would come to the critical"),
         ("cold-room", {"heat_sink_flow": 1e-4}, "the sink takes up so little heat that condensing would come to"),
         ("freezer-room", {SINK: KELVIN + 65}, "the compressed gas would be hotter than 146.2 °C"),
         ("cold-room", {"heat_source_flow": -0.1}, "a heat source flow of −360 m³/h cannot be"),
