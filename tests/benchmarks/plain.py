@@ -7,6 +7,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from commission.machine import Compressor, Media, SingleStage
+from commission.machine.circuit import between, within_reach
+from commission.machine.exchanger import effectiveness
 from commission.properties import Refrigerant
 
 PSEUDO_PURE = {"R-410A": "R410A"}
@@ -31,6 +33,21 @@ class Answer:
     discharge_temperature: float
 
 
+@dataclass(frozen=True)
+class Cycle:
+    """Heat in W that superheats gas inside the evaporator, heat taken, heat given and power, enthalpy (J/kg) and
+    pressure (Pa) at the discharge port, temperatures (K) that drive both coils."""
+
+    gas: float
+    taken: float
+    given: float
+    power: float
+    enthalpy: float
+    pressure: float
+    cold: float
+    warm: float
+
+
 class Plain:
     """Equations of `SingleStage`, written down straight, for dry air coils and a compressor of displacement."""
 
@@ -44,14 +61,19 @@ class Plain:
 
         return float(PropsSI(what, a, x, b, y, self.name))
 
-    def cycle(self, evaporating: float, condensing: float) -> tuple[float, float, float, float, float, float, float]:
-        """Heat taken, heat given, power, discharge enthalpy and pressure, temperatures that drive both coils."""
+    def superheat(self, evaporating: float) -> float:
+        """Superheat in K that the valve holds."""
+        return within_reach(self.m.superheat, self.media.source.temperature - evaporating, self.m.superheat_share)
+
+    def cycle(self, evaporating: float, condensing: float) -> Cycle:
+        """The refrigerant's side between two dew points in K."""
         m, get, compressor = self.m, self.get, self.m.compressor
         assert isinstance(compressor, Compressor)
         low = get("P", "T", evaporating, "Q", 1)
-        outlet = get("H", "T", evaporating + m.superheat, "P", low)
+        superheat = self.superheat(evaporating)
+        outlet, dew = get("H", "T", evaporating + superheat, "P", low), get("H", "T", evaporating, "Q", 1)
         p1 = get("P", "T", evaporating - m.suction_line.pressure_loss, "Q", 1)
-        T1 = evaporating + m.superheat + m.suction_line.warming
+        T1 = evaporating + superheat + m.suction_line.warming
         h1, s1, rho1 = (get(what, "T", T1, "P", p1) for what in "HSD")
         high = get("P", "T", condensing, "Q", 1)
         bubble = get("T", "P", high, "Q", 0)
@@ -65,22 +87,30 @@ class Plain:
         power = flow * work / efficiency
         h_out = h1 + power * (1 - compressor.shell_loss) / flow
         cold, warm = evaporating, condensing
-        if self.glides:  # mean over the heat taken up, by Simpson's rule
-            dew = get("H", "T", evaporating, "Q", 1)
+        if self.glides:  # mean over the heat taken up, by Simpson's rule, and the differences at both ends
             inlet = get("T", "P", low, "H", h_liquid)
             middle = get("T", "P", low, "H", 0.5 * (h_liquid + dew))
-            cold, warm = (inlet + 4 * middle + evaporating) / 6, 0.5 * (bubble + condensing)
-        return flow * (outlet - h_liquid), flow * (h_out - h_liquid), power, h_out, p2, cold, warm
+            air, mean = self.media.source.temperature, (inlet + 4 * middle + evaporating) / 6
+            cold = air - between(air - evaporating, 2 * (air - mean) - (air - evaporating))
+            outside = self.media.sink.temperature
+            warm = outside + between(bubble - outside, condensing - outside)
+        gas, taken, given = flow * (outlet - dew), flow * (outlet - h_liquid), flow * (h_out - h_liquid)
+        return Cycle(gas, taken, given, power, h_out, p2, cold, warm)
 
     def gaps(self, x: Sequence[float]) -> tuple[float, float]:
-        """Heat of the coils less heat of the refrigerant, in W over 10 K of the coil."""
-        taken, given, _, _, _, cold, warm = self.cycle(x[0], x[1])
-        source, sink = self.media.source, self.media.sink
-        low = self.m.evaporator.heat_per_kelvin(source)
-        high = self.m.condenser.heat_per_kelvin(sink)
+        """Heat of the coils less heat of the refrigerant, in W over 10 K of the coil.
+
+        Gas takes its superheat from a dry part of the evaporator's surface, which the air meets first.
+        """
+        c, source, sink, coil = self.cycle(x[0], x[1]), self.media.source, self.media.sink, self.m.evaporator
+        difference, conductance = source.temperature - x[0], coil.conductance_at(source.volume_flow)
+        dry = c.gas / (coil.gas_share * conductance * math.sqrt(difference * (difference - self.superheat(x[0]))))
+        reach = effectiveness((1 - dry) * conductance / source.capacity_rate)
+        evaporated = reach * (source.capacity_rate * (source.temperature - c.cold) - c.gas)
+        low, high = coil.heat_per_kelvin(source), self.m.condenser.heat_per_kelvin(sink)
         return (
-            (low * (source.temperature - cold) - taken) / (10 * low),
-            (high * (warm - sink.temperature) - given) / (10 * high),
+            (evaporated - (c.taken - c.gas)) / (10 * low),
+            (high * (c.warm - sink.temperature) - c.given) / (10 * high),
         )
 
     def answer(self) -> Answer:
@@ -89,6 +119,5 @@ class Plain:
 
         start = (self.media.source.temperature - 8.0, self.media.sink.temperature + 10.0)
         evaporating, condensing = map(float, fsolve(self.gaps, start, xtol=1e-8))
-        heat, _, power, h_out, p2, cold, warm = self.cycle(evaporating, condensing)
-        discharge = self.get("T", "P", p2, "H", h_out)
-        return Answer(cold, warm, heat, power, discharge)
+        c = self.cycle(evaporating, condensing)
+        return Answer(c.cold, c.warm, c.taken, c.power, self.get("T", "P", c.pressure, "H", c.enthalpy))
