@@ -148,9 +148,9 @@ def _timing(entry: DutyEntry, law: LeakDuty) -> _Timing:
     if law.applies and law.months is not None:
         note = law.reason
         if law.months_with_detection is not None:
-            note = _detection_duty(law) + (
-                f"every {law.months_with_detection} months where a leakage detection system in the sense of the law "
-                "watches the whole system: then write that interval in upkeep.yaml"
+            note = (
+                f"{law.reason}; {_detection_duty(law)}the longer interval counts only where such a system watches the "
+                "whole circuit: then write it in upkeep.yaml"
             )
         return _Timing(Interval(law.months, "month"), f"{law.document}, {law.edition}", _mark(law.mark), note)
     assert entry.otherwise is not None

@@ -7,6 +7,7 @@ from pathlib import Path
 import pytest
 
 from commission.checklists import Item, stages
+from commission.checklists.library import library
 from commission.description import LoadedPlant, load_plant
 from commission.prediction import fit
 from tests.checklists.conftest import YARD
@@ -272,8 +273,9 @@ def plant(example_folder: Path) -> LoadedPlant:
 
 
 def fitted(plant: LoadedPlant, system_id: str) -> dict[str, Item]:
-    """The items of a system of the example with its fitted model."""
-    return {i.id: i for stage in stages(plant, system_id, fit(plant, system_id)) for i in stage.items}
+    """The items of the shipped library for a system of the example with its fitted model."""
+    found = stages(plant, system_id, fit(plant, system_id), library=library())
+    return {i.id: i for stage in found for i in stage.items}
 
 
 def test_a_heater_that_heats_in_one_pass_sets_its_own_flow(plant: LoadedPlant) -> None:

@@ -28,6 +28,7 @@ LAST_DAYS = {
     "high-pressure": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "relief-look": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "relief-renewal": ("2029-02-28", "Real Decreto 552/2019, IF-08: 5 years, read"),
+    "heating-relief": ("2025-02-28", "common practice, no source"),
     "building-inspection": ("2029-02-28", "Directive (EU) 2024/1275, article 23: 5 years, from memory"),
     "building-inspection-large": ("2027-02-28", "the same, above 290 kW: 3 years, from memory"),
     "pressure-inspection": (None, "national rules"),
