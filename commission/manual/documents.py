@@ -9,7 +9,7 @@ from pathlib import Path
 from commission.description import LoadedPlant
 from commission.manual.book import OwnerFile, Sheet
 
-_ACTIVE = {
+ACTIVE = {
     ".html", ".htm", ".xhtml", ".shtml", ".mhtml", ".svg", ".svgz", ".xml", ".xsl", ".js", ".mjs", ".hta", ".exe",
     ".bat", ".cmd", ".ps1", ".sh", ".jar", ".lnk", ".url",
 }  # fmt: skip
@@ -48,7 +48,7 @@ def copied_files(plant_folder: Path) -> tuple[tuple[OwnerFile, ...], tuple[str, 
     copied, left = [], []
     for path in _walk(folder):
         relative = path.relative_to(folder).as_posix()
-        if path.suffix.lower() in _ACTIVE:
+        if path.suffix.lower() in ACTIVE:
             left.append(f"documents/{relative} is not copied: a file of this type can run a program when it is opened")
         elif path.suffix.lower() == ".md":
             sheet = Sheet(f"documents/{relative[:-3]}", _title(path), "documents", "owner.md", kicker="Documents")

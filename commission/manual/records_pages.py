@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
+from commission.manual.documents import ACTIVE
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.plant_pages import OpenLine
 from commission.manual.plots import Figure
@@ -55,6 +56,8 @@ def read_archive(plant: PlantData) -> Archive:
     for record in found.records:
         for attached in record.filed.attachments:
             path = folder / attached.path
+            if path.suffix.lower() in ACTIVE:
+                continue  # evidence too can run a program: its page names it with its digest, and the folder holds it
             if path.is_file() and folder.resolve() in path.resolve().parents:
                 files.append(OwnerFile(f"records/{attached.path}", path))
     return Archive(found, open_items(plant.loaded), pages, corrected, tuple(files))
