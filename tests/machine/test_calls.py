@@ -12,7 +12,7 @@ from commission.machine import Compressor, Media, SingleStage
 COLD, WARM = 95, 60
 
 
-@pytest.mark.parametrize("name", ["R-290", "R-410A", "R-717", "R-454B", "R-448A"])
+@pytest.mark.parametrize("name", ["R-290", "R-134a", "R-410A", "R-717", "R-454B", "R-448A"])
 def test_equation_of_state_calls_are_few(
     real: Callable[..., SingleStage], cold_room_media: Callable[[float, float], Media], name: str
 ) -> None:
