@@ -30,7 +30,7 @@ NEAR_CRITICAL = 0.98
 """Share of the critical pressure up to which a saturation temperature is told, as `acceptance` does."""
 STEP = 0.01
 """Step in which expected values are written, as a share of the deviation that a reading could just show."""
-NOTHING = 3
+NOTHING = 1
 """What a series leaves nowhere more of than so many steps is not carried."""
 _LIQUID_STEP = 5.0
 _REGIME_SIGNS = "0123456789abcdefghijklmnopqrstuvwxyz"
@@ -97,6 +97,7 @@ def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calcula
         "underConditions": [k for k in plan.readings if k not in READING_KEYS],
         "derived": derived,
         "instruments": {k: v for k, v in plan.instruments.items() if v},
+        "choices": _choices(plant, {NOMENCLATURE[k].kind for k in keys}),
         "until": {n: i.calibrated_until.isoformat() for n, i in instruments.items() if i.calibrated_until},
         "sheets": sheets,
         "steady": _steady(data),
@@ -104,6 +105,12 @@ def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calcula
         "saturation": saturation_rows(data.model.refrigerant) if data.model is not None else None,
         "expected": None if found is None else _table(found),
     }
+
+
+def _choices(plant: PlantData, kinds: set[Kind]) -> dict[str, list[str]]:
+    """The instruments of the plant for each kind of quantity."""
+    instruments = plant.loaded.plant.instruments
+    return {k.value: [n for n, i in instruments.items() if i.resolved.kind is k] for k in sorted(kinds)}
 
 
 def as_script(data: Mapping[str, Any]) -> Markup:
@@ -148,7 +155,7 @@ def kind_data(display: Display, kind: Kind) -> dict[str, Any]:
 
 def saturation_rows(refrigerant: Refrigerant) -> dict[str, Any]:
     """Dew and bubble temperatures (K) over the logarithm of pressure, from the coldest that is known."""
-    low = max(refrigerant.T_triple + 1.0, 193.15)
+    low = max(refrigerant.T_low, 193.15)
     first = math.log(max(refrigerant.dew(low).p, refrigerant.bubble(low).p))
     last = math.log(NEAR_CRITICAL * refrigerant.p_critical)
     step = (last - first) / (SATURATION_ROWS - 1)
@@ -200,11 +207,14 @@ def _table(found: Calculated) -> dict[str, Any]:
         "regimes": "".join("-" if n < 0 else _REGIME_SIGNS[n] for n in table.regimes),
         "series": [_series(found, name) for name in table.names],
         "bands": [
-            {k: [[_short(f) for f in factors], _short(error)] for k, (factors, error) in bands.logs.get(n, {}).items()}
+            {
+                k: [[round(f, 4) for f in factors], round(error, 3)]
+                for k, (factors, error) in bands.logs.get(n, {}).items()
+            }
             for n in table.names
         ],
         "unknown": {
-            key: [{k: _short(v) for k, v in by_regime.get(n, {}).items()} for n in table.names]
+            key: [{k: float(f"{v:.4g}") for k, v in by_regime.get(n, {}).items()} for n in table.names]
             for key, by_regime in bands.unknown.items()
         },
     }
@@ -222,7 +232,7 @@ def _series(found: Calculated, name: str) -> dict[str, Any] | None:
         "rows": {k: _row(row, k in series.logs, steps[k]) for k, row in series.rows.items()},
         "logs": sorted(series.logs),
         "left": {k: _left(found.table, name, k, step) for k, step in steps.items()},
-        "steps": {k: _short(step) for k, step in steps.items()},
+        "steps": {k: float(f"{step:.4g}") for k, step in steps.items()},
         "errors": {k: round(e, 3) for k, e in series.errors.items() if e > 0.0005},
     }
 
@@ -246,7 +256,7 @@ def _left(table: LiveTable, name: str, key: str, step: float) -> list[int]:
 
 def _row(row: Sequence[float], log: bool, step: float) -> list[float]:
     """The factors to a small share of the step; those of a logarithm as a share of the value."""
-    fine = 1e-7 if log else 0.05 * step
+    fine = 1e-6 if log else 0.3 * step
     digits = -math.floor(math.log10(fine))
     rounded = [round(x, digits) for x in row]
     return [int(x) if x == int(x) else x for x in rounded]

@@ -12,11 +12,13 @@ from numpy.polynomial import chebyshev
 
 DEGREES = {1: (8, 6, 4, 2, 1), 2: (7, 6, 5, 4, 3, 2, 1), 3: (4, 3, 2, 1)}
 """Total degrees that are tried over the axes, by the number of axes."""
-WITH_EXTRA, WITH_SQUARE = 3, 1
+WITH_EXTRA, WITH_SQUARE = 2, 1
 """Total degrees over the axes of the terms that a further condition, and its square, are multiplied with."""
 POINTS_PER_TERM = 1.5
 RUNAWAY = 1.5
 """A point that a series misses by more than so many bands is one that nothing follows."""
+MARGIN = 1.5
+"""The largest miss is taken half as large again: the points beside, at which it was found, are few."""
 ROUNDS, MOST_DROPPED = 8, 0.35
 """Rounds in which the worst tenth of such points are left out, and the share of all that may be."""
 
@@ -34,7 +36,7 @@ class Series:
 
     A condition x enters as (x - centre) / half; the sum of a key among `logs` is the logarithm of its value. `left` is
     what remains at each point of the grid, the last axis fastest, zero where another regime holds. `errors` is the
-    largest miss at points beside, as a share of the deviation that a reading could just show.
+    largest miss to reckon with, from points beside, as a share of the deviation that a reading could just show.
     """
 
     centres: tuple[float, ...]
@@ -181,7 +183,7 @@ class Fitting:
             tuple(map(float, centres)), tuple(map(float, halves)), terms,
             {k: tuple(map(float, rows[:, n])) for n, k in enumerate(self.keys)}, used,
             {k: left[:, n] for n, k in enumerate(self.keys)},
-            {k: float(errors[:, n].max(initial=0.0)) for n, k in enumerate(self.keys)},
+            {k: MARGIN * float(errors[:, n].max(initial=0.0)) for n, k in enumerate(self.keys)},
         )  # fmt: skip
         worst = float(np.quantile(errors.max(axis=1), 0.9)) if len(errors) else math.inf
         return series, (np.abs(gaps) / self.bands).max(axis=1), worst

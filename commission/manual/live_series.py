@@ -22,7 +22,7 @@ from commission.manual.live_fit import Axes, Fitting, Point, Series, cell_of
 if TYPE_CHECKING:
     from commission.prediction import Nominal, SystemModel
 
-GRID = {1: (41,), 2: (15, 23), 3: (7, 7, 5)}
+GRID = {1: (41,), 2: (15, 23), 3: (7, 7, 4)}
 """Points of the grid along each axis, by the number of axes."""
 MOST_CHECKS = 60
 Ranges = Mapping[str, tuple[float, float, float]]

@@ -26,7 +26,7 @@ class Row:
     label: str
     unit: str
     how: str = ""
-    instruments: tuple[str, ...] = ()
+    instruments: bool = False
     chosen: str = ""
     rated: str = ""
     optional: bool = False
@@ -70,25 +70,32 @@ def live_sheet(plant: PlantData, data: SystemData) -> Sheet:
 
 def _row(plant: PlantData, data: SystemData, plan: LivePlan, key: str) -> Row:
     kind = NOMENCLATURE[key].kind
-    fit = tuple(n for n, i in plant.loaded.plant.instruments.items() if i.resolved.kind is kind)
+    fit = any(i.resolved.kind is kind for i in plant.loaded.plant.instruments.values())
     rated = data.rated.conditions.get(key) if data.rated else None
     return Row(
         key,
         label_of(key),
         unit_of(plant.display, kind),
         HOW.get(key, ""),
-        fit if key in (*plan.conditions, *plan.readings) else (),
+        fit and key in (*plan.conditions, *plan.readings),
         plan.instruments.get(key) or "",
         "" if rated is None else stated_number(plant.display, rated, kind),
         key in plan.conditions and not key.endswith("_temperature"),
     )
 
 
+def in_sentence(label: str) -> str:
+    """A label in the middle of a sentence: a small first letter, but for an abbreviation."""
+    return label if label[1:2].isupper() else label[:1].lower() + label[1:]
+
+
 def _when_filed(data: SystemData, plan: LivePlan, derived: list[str]) -> list[str]:
     """What is judged only when the record is filed, since the page cannot work it out."""
     expected = data.rated.expected if data.rated else {}
     capacities = ("cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop")
-    return [label_of(k) for k in capacities if k in expected and k not in derived and k not in plan.readings]
+    return [
+        in_sentence(label_of(k)) for k in capacities if k in expected and k not in derived and k not in plan.readings
+    ]
 
 
 def _stages(plant: PlantData, data: SystemData) -> list[tuple[str, str, bool]]:

@@ -58,10 +58,10 @@ def single_files(book: Book, env: jinja2.Environment, templates: Path, plant: Pl
 def one_file(book: Book, env: jinja2.Environment, templates: Path, plant: PlantData, sheet: Sheet) -> bytes:
     """One page as a file that needs no other."""
     paper = paper_style(plant.name, plant.loaded.digest).decode("utf-8")
-    look = (templates / "style" / "manual.css").read_text(encoding="utf-8")
+    look = _tight((templates / "style" / "manual.css").read_text(encoding="utf-8"))
     style = f"\n{look}\n@media print {{\n{paper}\n}}\n"
     names = ("page.js", *sheet.scripts)
-    script = "\n" + "\n".join((templates / "scripts" / n).read_text(encoding="utf-8") for n in names) + "\n"
+    script = "\n" + "\n".join(_tight((templates / "scripts" / n).read_text(encoding="utf-8")) for n in names) + "\n"
     text = env.get_template("single.html").render(
         sheet=sheet,
         plant_name=plant.name,
@@ -72,6 +72,11 @@ def one_file(book: Book, env: jinja2.Environment, templates: Path, plant: PlantD
         body=without_links_away(render_body(env, book, sheet)),
     )
     return text.encode("utf-8")
+
+
+def _tight(text: str) -> str:
+    """A style or a script without its indentation: none of ours has words that run over several lines."""
+    return re.sub(r"\n[ \t]+", "\n", text)
 
 
 class LoneBook(Book):

@@ -26,7 +26,10 @@
   function ticked(name) { var one = field(name); return Boolean(one && one.checked); }
   function mode() { return form.querySelector("[name=mode]:checked").value; }
   function label(key) { return data.quantities[key].label; }
-  function small(key) { var words = label(key); return words.charAt(0).toLowerCase() + words.slice(1); }
+  function small(key) {
+    var words = label(key);
+    return /^.[A-Z]/.test(words) ? words : words.charAt(0).toLowerCase() + words.slice(1);
+  }
   function kind(key) { return data.kinds[data.quantities[key].kind]; }
 
   // A number as typed: decimal comma or point, any minus sign. null: nothing there; NaN: no number.
@@ -228,7 +231,7 @@
     var parts = [element("span", "", count.read + " read")];
     if (expectation.values) {
       parts.push(element("span", count.inside ? "say-good" : "soft", count.inside + " inside"));
-      parts.push(element("span", count.outside.length ? "say-stop" : "soft", count.outside.length + " outside" + (count.outside.length ? ": " + count.outside.slice(0, 3).join(", ") + (count.outside.length > 3 ? " and more" : "") : "")));
+      parts.push(element("span", count.outside.length ? "say-stop" : "soft", count.outside.length + " outside" + (count.outside.length && count.outside.length < 3 ? ": " + count.outside.join(", ") : "")));
       if (count.later) { parts.push(element("span", "say-open", count.later + " decided when filed")); }
     } else {
       parts.push(element("span", "soft", "nothing expected yet"));
@@ -336,8 +339,21 @@
     by("live-saved").textContent = "Saved as " + link.download + ". If the device saved no file, show it as text and copy it.";
   }
 
+  // The instruments of the plant that measure this kind of quantity, the one that is meant first.
+  function offerInstruments() {
+    form.querySelectorAll("[data-instrument]").forEach(function (select) {
+      var key = select.getAttribute("data-instrument"), meant = data.instruments[key] || "";
+      [meant].concat(data.choices[data.quantities[key].kind].filter(function (name) { return name !== meant; })).forEach(function (name) {
+        var option = element("option", "", name || "not stated");
+        option.value = name;
+        select.appendChild(option);
+      });
+    });
+  }
+
   function setUp() {
     form.hidden = false;
+    offerInstruments();
     restore();
     form.addEventListener("input", update);
     form.addEventListener("change", update);
