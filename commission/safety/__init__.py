@@ -9,7 +9,14 @@ from commission.safety.figures import safety_figures
 from commission.safety.formulas import nitrogen_pressure
 from commission.safety.hot_water import warm_volume_below_element
 from commission.safety.leaks import LeakDuty, label_text, leak_duty, leak_duty_of
-from commission.safety.limit_order import LimitOrder, OutOfOrder, PressureStep, limit_order
+from commission.safety.limit_order import (
+    LimitOrder,
+    OutOfOrder,
+    PressureStep,
+    ReliefSetting,
+    limit_order,
+    relief_settings,
+)
 from commission.safety.limits import ChargeLimit
 from commission.safety.market import MarketDate, market_dates, rated_capacity
 from commission.safety.oils import Oil, oil_named
@@ -40,6 +47,7 @@ __all__ = [
     "OutOfOrder",
     "PressureStep",
     "ReliefDuty",
+    "ReliefSetting",
     "SpaceCharge",
     "Substance",
     "charge_limits",
@@ -58,6 +66,7 @@ __all__ = [
     "oil_named",
     "rated_capacity",
     "relief_duties",
+    "relief_settings",
     "relief_valves",
     "safety_figures",
     "strength_test_steps",

@@ -59,7 +59,7 @@ def limit_order(loaded: LoadedPlant, system_id: str, figures: Figures) -> LimitO
     if setting is not None:
         path = f"{base}.controls.high_pressure_limit"
         steps.append(PressureStep("high-pressure limit", loaded.absolute(setting), str(loaded.where(path))))
-    for valve in _reliefs(loaded, system_id):
+    for valve in relief_settings(loaded, system_id):
         steps.append(PressureStep(valve.title, valve.pressure, str(loaded.where(valve.path)), valve.low_side))
     for stamped in stamped_pressures(loaded, system_id):
         title = f"allowable pressure, {stamped.side} side"
@@ -69,14 +69,16 @@ def limit_order(loaded: LoadedPlant, system_id: str, figures: Figures) -> LimitO
 
 
 @dataclass(frozen=True, slots=True)
-class _Relief:
+class ReliefSetting:
+    """A relief valve that is described: its title, its key path, its set pressure in Pa absolute, what it protects."""
+
     title: str
     path: str
     pressure: float
     low_side: bool
 
 
-def _reliefs(loaded: LoadedPlant, system_id: str) -> list[_Relief]:
+def relief_settings(loaded: LoadedPlant, system_id: str) -> tuple[ReliefSetting, ...]:
     """The relief valves; one that opens no higher than the low side bears, below the high side, protects that side."""
     stamped = {s.side: s.absolute for s in stamped_pressures(loaded, system_id)}
     low, high = stamped.get("low"), stamped.get("high")
@@ -87,8 +89,8 @@ def _reliefs(loaded: LoadedPlant, system_id: str) -> list[_Relief]:
         path = "receiver.relief_valve" if name == "receiver" else f"relief_valves.{name}"
         low_side = name != "receiver" and low is not None and high is not None and setting <= low < high
         title = "relief valve" if len(valves) == 1 else f"relief valve, {name}"
-        found.append(_Relief(title, f"systems.{system_id}.{path}", setting, low_side))
-    return found
+        found.append(ReliefSetting(title, f"systems.{system_id}.{path}", setting, low_side))
+    return tuple(found)
 
 
 def _stated(title: str, value: float, origin: str) -> Explained:
@@ -126,13 +128,13 @@ def _limit_problems(loaded: LoadedPlant, system_id: str, figures: Figures) -> tu
                     "check condenser and settings before raising anything",
                 )
             )
-    for valve in _reliefs(loaded, system_id):
+    for valve in relief_settings(loaded, system_id):
         found += _relief_problems(loaded, valve, figures, controls.high_pressure_limit)
     return tuple(found)
 
 
 def _relief_problems(
-    loaded: LoadedPlant, valve: _Relief, figures: Figures, limit: Pressure | None
+    loaded: LoadedPlant, valve: ReliefSetting, figures: Figures, limit: Pressure | None
 ) -> Iterator[OutOfOrder]:
     shown = _stated(valve.title, valve.pressure, str(loaded.where(valve.path)))
     top = figures.get("relief_highest")

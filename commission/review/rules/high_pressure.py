@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from commission.quantities import Kind
 from commission.review.facts import SystemFacts, explained_figure
 from commission.review.finding import Remark
+from commission.safety import ReliefSetting, relief_settings
 
 
 def limiter_over_allowable(facts: SystemFacts) -> Iterator[Remark]:
@@ -45,32 +46,32 @@ def relief_out_of_order(facts: SystemFacts) -> Iterator[Remark]:
 
     Source: EN 378-2: a relief device opens at most at the allowable pressure of what it protects, after the limiter.
     """
-    receiver = facts.system.receiver
-    if receiver is None or receiver.relief_valve is None:
-        return
-    relief = facts.absolute(receiver.relief_valve)
-    path = facts.path("receiver", "relief_valve")
+    for valve in relief_settings(facts.plant.loaded, facts.id):
+        yield from _relief_out_of_order(facts, valve)
+
+
+def _relief_out_of_order(facts: SystemFacts, valve: ReliefSetting) -> Iterator[Remark]:
     allowable = facts.system.nameplate.allowable_pressure_high
-    if allowable is not None and relief > facts.absolute(allowable) + 1.0:
+    if allowable is not None and valve.pressure > facts.absolute(allowable) + 1.0:
         yield Remark(
             "error",
-            path,
-            f"The relief valve of {facts.title} opens above the allowable pressure of the high side.",
+            valve.path,
+            f"The {valve.title} of {facts.title} opens above the allowable pressure of the high side.",
             (
-                facts.plant.figure("relief valve", relief, Kind.PRESSURE),
+                facts.plant.figure("relief valve", valve.pressure, Kind.PRESSURE),
                 facts.plant.figure("allowable pressure, high side", facts.absolute(allowable), Kind.PRESSURE),
             ),
             "Do not charge the plant before the valve is right; read both nameplates.",
         )
     setting = facts.system.controls.high_pressure_limit
-    if setting is not None and relief <= facts.absolute(setting):
+    if setting is not None and not valve.low_side and valve.pressure <= facts.absolute(setting):
         yield Remark(
             "error",
-            path,
-            f"The relief valve of {facts.title} opens before the high-pressure limiter stops the compressor.",
+            valve.path,
+            f"The {valve.title} of {facts.title} opens before the high-pressure limiter stops the compressor.",
             (
                 facts.plant.figure("high-pressure limiter", facts.absolute(setting), Kind.PRESSURE),
-                facts.plant.figure("relief valve", relief, Kind.PRESSURE),
+                facts.plant.figure("relief valve", valve.pressure, Kind.PRESSURE),
             ),
             "Set the limiter below the relief valve: refrigerant must not be blown off by an ordinary high pressure.",
         )
