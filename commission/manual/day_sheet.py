@@ -12,7 +12,7 @@ from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
 from commission.manual.showing import label_of, size_text, unit_of
-from commission.manual.system_pages import Cell, conditions_line, grid_cell
+from commission.manual.system_pages import Cell, grid_cell, grid_conditions
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 READ = (
@@ -197,8 +197,9 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "tables": tables,
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),
-        "fixed": conditions_line(plant, data, grid.fixed) if grid else "",
+        "fixed": grid_conditions(plant, data, grid) if grid else "",
         "instruments": _used(plant, data, _wanted(data)),
         "saturation": data.page("saturation-table"),
+        "live_sheet": data.page("live-sheet"),
     }
     return Sheet(data.page("day-sheet"), "Day sheet", data.group, "day_sheet.html", context, data.kicker, paper=True)

@@ -31,7 +31,8 @@ class GridPoint:
 
 @dataclass(frozen=True, slots=True)
 class Grid:
-    """Expected readings along one condition; all other conditions are at `fixed`.
+    """Expected readings along one condition; all other conditions are at `fixed`, but for those that are `led` by it
+    through the weather curve.
 
     `key` is the condition that varies, `title` its name as a person says it, `points` every 5 K (the printed table)
     and `line` every 2.5 K (the charts), in ascending order; temperatures in K.
@@ -40,6 +41,7 @@ class Grid:
     key: str
     title: str
     fixed: Mapping[str, float]
+    led: tuple[str, ...]
     points: tuple[GridPoint, ...]
     line: tuple[GridPoint, ...]
 
@@ -88,7 +90,7 @@ def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[flo
 
 
 def _walk(model: SystemModel, key: str, values: tuple[float, ...]) -> tuple[GridPoint, ...]:
-    found = model.grid(key, values, {k: v for k, v in model.rated_condition.items() if k != key})
+    found = model.grid(key, values, model.along(key))
     return tuple(
         GridPoint(t, None, p.problems[0].message) if isinstance(p, NotCalculatedError) else GridPoint(t, p)
         for t, p in zip(values, found, strict=True)
@@ -103,5 +105,6 @@ def make_grid(loaded: LoadedPlant, system: System, model: SystemModel) -> Grid |
     coarse = temperatures(loaded, key, model)
     middles = [0.5 * (a + b) for a, b in pairwise(coarse)]
     line = _walk(model, key, tuple(sorted({*coarse, *middles})))
-    fixed = {k: v for k, v in model.rated_condition.items() if k != key}
-    return Grid(key, title, fixed, tuple(p for p in line if p.temperature in coarse), line)
+    fixed = model.along(key)
+    led = tuple(k for k in model.rated_condition if k != key and k not in fixed)
+    return Grid(key, title, fixed, led, tuple(p for p in line if p.temperature in coarse), line)

@@ -103,6 +103,12 @@ def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str,
     return "; ".join(parts)
 
 
+def grid_conditions(plant: PlantData, data: SystemData, grid: Grid) -> str:
+    """What stays while the grid's condition varies, and what the weather curve sets by it."""
+    led = "; ".join(f"{label_of(k).lower()} as the weather curve sets it" for k in grid.led)
+    return "; ".join(text for text in (conditions_line(plant, data, grid.fixed), led) if text)
+
+
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
     """All expected values at the rated condition, grouped; what is not calculated stands in its place too."""
     assert data.rated is not None
@@ -261,7 +267,7 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
 
 def _grid_note(plant: PlantData, data: SystemData, grid: Grid) -> str:
     display = plant.display
-    fixed = conditions_line(plant, data, grid.fixed)
+    fixed = grid_conditions(plant, data, grid)
     text = f"Everything else is as rated: {fixed}. " if fixed else ""
     regimes = [(p.temperature, p.prediction.regime) for p in grid.points if p.prediction]
     changes = [(t, r) for (_, before), (t, r) in pairwise(regimes) if r != before]
@@ -327,5 +333,6 @@ def _why(worst: ShownAssumption | None) -> str:
     if worst is None or worst.share is None:
         return ""
     share = f"{worst.share:.0%}".replace("%", " %")
-    text = f"Away from the rated condition it makes about {share} of the uncertainty of the expected readings."
-    return text + (f" One standard uncertainty of it moves {', '.join(worst.effects)}." if worst.effects else "")
+    text = f"At the rated condition it makes about {share} of the uncertainty of the expected readings."
+    moved = f" Far from it, one standard uncertainty of it moves {', '.join(worst.effects)}."
+    return text + (moved if worst.effects else "")

@@ -117,6 +117,12 @@ def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> Condit
 FLOW, OUTDOOR = "heat_sink_outlet_temperature", "heat_source_inlet_temperature"
 
 
+def followers(facts: Facts, axes: Mapping[str, ConditionAxis], key: str) -> frozenset[str]:
+    """The conditions that the controls set by the condition `key`: by outdoor air, the flow of a weather curve."""
+    led = facts.system.controls.weather_curve is not None and facts.source_liquid is None and FLOW in axes
+    return frozenset({FLOW}) if led and key == OUTDOOR else frozenset()
+
+
 def with_weather_curve(
     facts: Facts, axes: Mapping[str, ConditionAxis], given: Mapping[str, float]
 ) -> tuple[Mapping[str, float], tuple[str, ...]]:
@@ -127,7 +133,7 @@ def with_weather_curve(
     """
     curve = facts.system.controls.weather_curve
     told = {FLOW, _other_end(FLOW)} & set(given)
-    if curve is None or told or facts.source_liquid is not None or FLOW not in axes or OUTDOOR not in given:
+    if curve is None or told or OUTDOOR not in given or not followers(facts, axes, OUTDOOR):
         return given, ()
     points = sorted((p.outdoor, p.flow) for p in curve.points)
     outdoor = min(max(given[OUTDOOR], points[0][0]), points[-1][0])

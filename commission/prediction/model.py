@@ -10,7 +10,7 @@ from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
-from commission.prediction.conditions import ConditionAxis, axes_of, complete, with_weather_curve
+from commission.prediction.conditions import ConditionAxis, axes_of, complete, followers, with_weather_curve
 from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
@@ -83,6 +83,12 @@ class SystemModel:
     def rated_condition(self) -> dict[str, float]:
         """The rated value of each condition, SI."""
         return {key: axis.rated for key, axis in self.condition_axes.items()}
+
+    def along(self, key: str) -> dict[str, float]:
+        """What stays as rated while the condition `key` varies, SI: all others, but for what the controls set by it
+        (the flow temperature of a weather curve), which is to be left to them."""
+        led = followers(self.facts, self.condition_axes, key)
+        return {k: v for k, v in self.rated_condition.items() if k != key and k not in led}
 
     def predict(self, conditions: Mapping[str, float] | None = None) -> Prediction:
         """Expected values at a condition (keys of the nomenclature, SI); None means the rated condition.

@@ -201,7 +201,7 @@ def reason_of(error: CommissionError) -> str:
 
 
 def _outlooks(facts: SystemFacts, model: SystemModel) -> dict[str, Outlook]:
-    """Design, hottest and coldest day: outdoor air as the climate says, all else as designed."""
+    """Design, hottest and coldest day: outdoor air of the climate, all else as designed or by the weather curve."""
     design = conditions_of(facts.system.design) if facts.system.design else {}
     found = {"design": _outlook("at the design condition", model, design)}
     climate = facts.plant.loaded.plant.plant.climate
@@ -214,7 +214,9 @@ def _outlooks(facts: SystemFacts, model: SystemModel) -> dict[str, Outlook]:
             continue
         if (facts.system.duty, name) in DOUBTFUL:
             words += ", if it runs then"
-        found[name] = _outlook(words, model, {**design, f"heat_{side}_inlet_temperature": air})
+        key = f"heat_{side}_inlet_temperature"
+        stays = model.along(key)
+        found[name] = _outlook(words, model, {**{k: v for k, v in design.items() if k in stays}, key: air})
     return found
 
 

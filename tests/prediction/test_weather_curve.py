@@ -38,3 +38,18 @@ def test_higher_flow_costs_condensing_pressure(heating: SystemModel) -> None:
     curve = heating.predict({OUTDOOR: KELVIN - 9}).expected["condensing_temperature"].value
     rated = heating.predict({OUTDOOR: KELVIN - 9, FLOW: KELVIN + 34}).expected["condensing_temperature"].value
     assert curve - rated == pytest.approx(4, abs=1)
+
+
+def test_tables_over_outdoor_air_follow_the_curve(heating: SystemModel) -> None:
+    """What stays while outdoor air varies leaves the flow temperature to the curve: a table meets its points."""
+    stays = heating.along(OUTDOOR)
+    assert set(heating.rated_condition) - set(stays) == {OUTDOOR, FLOW}
+    found = heating.grid(OUTDOOR, [KELVIN - 9, KELVIN + 2, KELVIN + 15], stays)
+    assert [p.conditions[FLOW] for p in found] == pytest.approx([KELVIN + 38, KELVIN + 34, KELVIN + 27])
+
+
+def test_other_tables_keep_the_flow_temperature(heating: SystemModel, cold_room: SystemModel) -> None:
+    """Over another condition the rated flow temperature stays, and without a curve all but the varied one does."""
+    assert FLOW in heating.along("compressor_speed")
+    key = "heat_sink_inlet_temperature"
+    assert set(cold_room.rated_condition) - set(cold_room.along(key)) == {key}
