@@ -12,6 +12,7 @@ from dataclasses import dataclass, replace
 from commission.errors import InputError, NotCalculatedError, Problem, nearest
 from commission.machine import Compressor, SingleStage, Transcritical
 from commission.prediction.building import Machine, Plan, media
+from commission.prediction.charge import with_charge
 from commission.prediction.guard import in_words
 from commission.prediction.model import SystemModel
 
@@ -64,9 +65,17 @@ def _feed(machine: Machine, size: float, area: float) -> Machine:
 
 
 def _flash(machine: Machine, size: float, area: float) -> Machine:
-    one = _single(machine, "refrigerant lacking")
+    one = _single(machine, "vapour before the valve")
     feed = one.greatest_feed if one.restriction is not None else area
     return replace(one, flash=size, subcooling=0.0, greatest_feed=feed)
+
+
+def _undercharge(machine: Machine, size: float, area: float) -> Machine:
+    return with_charge(_single(machine, "charge too small"), -size, area)
+
+
+def _overcharge(machine: Machine, size: float, area: float) -> Machine:
+    return with_charge(_single(machine, "charge too large"), size, area)
 
 
 _ALL = (
@@ -77,7 +86,9 @@ _ALL = (
     Fault(
         "feed_restriction", "Valve, drier or liquid line restricted", "share of the full feed that is lost", 0.9, _feed
     ),
-    Fault("flash_gas", "Refrigerant lacking", "share of vapour before the valve", 0.5, _flash),
+    Fault("flash_gas", "Vapour before the valve", "share of vapour before the valve", 0.5, _flash),
+    Fault("undercharge", "Charge too small", "share of the charge that is lost", 0.5, _undercharge),
+    Fault("overcharge", "Charge too large", "share of the charge that is too much", 0.5, _overcharge),
 )
 FAULTS: Mapping[str, Fault] = {fault.key: fault for fault in _ALL}
 VALVE_RESERVE = 1.3
@@ -108,7 +119,9 @@ def with_fault(model: SystemModel, key: str, size: float) -> SystemModel:
         return model
 
     def sick(plan: Plan) -> Plan:
-        area = VALVE_RESERVE * _rated_feed(model, plan) if key in ("feed_restriction", "flash_gas") else 0.0
+        area = (
+            VALVE_RESERVE * _rated_feed(model, plan) if key in ("feed_restriction", "flash_gas", "undercharge") else 0.0
+        )
         return replace(plan, machine=fault.apply(plan.machine, size, area))
 
     variants = tuple(replace(v, plan=sick(v.plan)) for v in model.fit.variants)

@@ -15,9 +15,11 @@ SIGNS = {
     "foreign_gas": {"discharge_pressure": 1, "discharge_temperature": 1, "cooling_capacity": -1},
     "feed_restriction": {"suction_pressure": -1, "superheat": 1, "cooling_capacity": -1, "discharge_temperature": 1},
     "flash_gas": {"suction_pressure": -1, "superheat": 1, "cooling_capacity": -1, "subcooling": -1},
+    "undercharge": {"suction_pressure": -1, "superheat": 1, "cooling_capacity": -1, "subcooling": -1},
+    "overcharge": {"discharge_pressure": 1, "condenser_temperature_difference": 1, "cooling_capacity": -1},
 }
 SIZES = {"condenser_fouling": 0.4, "evaporator_fouling": 0.4, "valve_leakage": 0.15, "foreign_gas": 1e5,
-         "feed_restriction": 0.45, "flash_gas": 0.15}  # fmt: skip
+         "feed_restriction": 0.45, "flash_gas": 0.15, "undercharge": 0.37, "overcharge": 0.5}  # fmt: skip
 
 
 @pytest.fixture(scope="module")
@@ -35,7 +37,8 @@ def test_every_fault_is_tried() -> None:
 def test_readings_move_as_the_trade_knows(cold_room: SystemModel, fault: str) -> None:
     """Each fault moves the readings of the cold room in its known direction, and by more the larger it is."""
     healthy = cold_room.predict().expected
-    small = with_fault(cold_room, fault, 0.8 * SIZES[fault]).predict().expected
+    less = 0.94 if fault == "undercharge" else 0.8  # below 0.3 the receiver hides it
+    small = with_fault(cold_room, fault, less * SIZES[fault]).predict().expected
     large = with_fault(cold_room, fault, SIZES[fault]).predict().expected
     for key, sign in SIGNS[fault].items():
         assert sign * (small[key].value - healthy[key].value) > 0, key
@@ -80,8 +83,37 @@ def test_senseless_faults_are_refused(cold_room: SystemModel, fault: str, size: 
     assert problem.allowed or problem.nearest == "condenser_fouling"
 
 
-@pytest.mark.parametrize("fault", ["foreign_gas", "feed_restriction", "flash_gas"])
+@pytest.mark.parametrize("fault", ["foreign_gas", "feed_restriction", "flash_gas", "undercharge"])
 def test_what_is_not_carried_is_said(shower: SystemModel, fault: str) -> None:
     """Faults that need a condenser are refused for a circuit with a gas cooler, with the reason."""
     with pytest.raises(NotCalculatedError, match="gas cooler"):
         with_fault(shower, fault, 0.1)
+
+
+def test_a_receiver_hides_a_loss_until_it_is_empty(cold_room: SystemModel) -> None:
+    """With a receiver a loss of a fifth shows nowhere; when it is empty gas reaches the valve, not less subcooling."""
+    healthy = cold_room.predict().expected
+    hidden = with_fault(cold_room, "undercharge", 0.2).predict().expected
+    assert hidden["subcooling"].value == healthy["subcooling"].value
+    assert hidden["cooling_capacity"].value == healthy["cooling_capacity"].value
+    assert with_fault(cold_room, "undercharge", 0.37).predict().expected["subcooling"].value == 0.0
+
+
+def test_without_a_receiver_subcooling_goes_with_the_charge(example: LoadedPlant) -> None:
+    """Without a receiver less charge means less subcooling down to none, more charge more subcooling and pressure."""
+    hall = fit(example, "dining-hall")
+    found = {0.0: hall.predict().expected}
+    for change in (-0.25, -0.15, -0.05, 0.1, 0.2):
+        fault = "undercharge" if change < 0 else "overcharge"
+        found[change] = with_fault(hall, fault, abs(change)).predict().expected
+    order = [found[change]["subcooling"].value for change in sorted(found)]
+    assert order == sorted(order)
+    assert order[0] == 0.0 < order[1]
+    assert found[0.2]["discharge_pressure"].value > found[0.0]["discharge_pressure"].value
+    assert found[0.1]["cooling_capacity"].value == pytest.approx(found[0.0]["cooling_capacity"].value, rel=0.05)
+
+
+def test_an_empty_circuit_is_not_calculated(cold_room: SystemModel) -> None:
+    """With half its charge gone the cold room's valve would get vapour alone: refused with that reason."""
+    with pytest.raises(NotCalculatedError, match="vapour alone"):
+        with_fault(cold_room, "undercharge", 0.5).predict()
