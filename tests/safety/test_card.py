@@ -59,6 +59,8 @@ def test_ammonia_card_carries_the_levels_of_people(plant: Plants) -> None:
     found = text(card(plant(refrigerant="R-717", charge="40 kg")))
     assert "300 ppm" in found
     assert "30,000 ppm" not in found
+    assert "At a quarter of that" not in found
+    assert "kills far below that" in found
     assert "poisonous" in found
 
 
