@@ -301,12 +301,17 @@ def test_a_charge_over_the_limit_of_a_room(facts: Facts) -> None:
 
 
 def test_leak_detection_by_law(facts: Facts) -> None:
-    """130 kg of R-404A are 510 t CO2 equivalent, over the 500 t of article 6; 100 kg are not; a detector ends it."""
+    """130 kg of R-404A are 510 t CO2 equivalent, over the 500 t of article 6; 100 kg are not; a detector ends it.
+
+    128 kg of R-454C are only 19 t, but hold 100.5 kg of R-1234yf (78.5 %), over the 100 kg of annex II gases."""
     big = with_safety(facts({"refrigerant": "R-404A", "charge": "130 kg"}))
     (remark,) = duties.leak_detection(big)
     assert remark.severity == "warning"
     assert figure(remark, "CO₂ equivalent of the charge").value == pytest.approx(130 * 3922, rel=1e-3)
     assert not list(duties.leak_detection(with_safety(facts({"refrigerant": "R-404A", "charge": "100 kg"}))))
+    (blend,) = duties.leak_detection(with_safety(facts({"refrigerant": "R-454C", "charge": "128 kg"})))
+    assert figure(blend, "gases of annex II, section 1, in the charge").value == pytest.approx(128 * 0.785, rel=1e-3)
+    assert not list(duties.leak_detection(with_safety(facts({"refrigerant": "R-454C", "charge": "127 kg"}))))
     watched = facts({"refrigerant": "R-404A", "charge": "130 kg"}, spaces={"store": {"leak_detector": "yes"}})
     assert not list(duties.leak_detection(with_safety(watched)))
 

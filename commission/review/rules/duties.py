@@ -41,26 +41,37 @@ def charge_over_limit(facts: SystemFacts) -> Iterator[Remark]:
 def leak_detection(facts: SystemFacts) -> Iterator[Remark]:
     """A charge from which the law asks for a leakage detection system, and none is written in any space.
 
-    Source: EU 2024/573 article 6 (from memory; threshold `leak_detection_from`, CO2 equivalent).
+    Source: EU 2024/573 article 6 (from memory; threshold `leak_detection_from` for CO2 equivalent, a figure of the
+    safety rules for the mass of annex II gases).
     """
-    figure = facts.safety_figure("co2_equivalent")
+    from commission.safety import MARKS, fact
+
     entry = facts.plant.threshold("leak_detection_from")
+    mass = fact("detection_system_duty_annex_ii")
+    counts = (
+        (facts.safety_figure("co2_equivalent"), entry.value, entry.source, entry.mark),
+        (facts.safety_figure("annex_ii_mass"), mass.value, mass.source, MARKS[mass.mark]),
+    )
     plant = facts.plant.loaded.plant
-    if plant.plant.rules.refrigerant_law != "EU 2024/573" or figure is None or figure.value < entry.value:
+    if plant.plant.rules.refrigerant_law != "EU 2024/573":
         return
     if any(plant.spaces[space.space_id].leak_detector for space in facts.spaces):
         return
+    over = next(((f, start, s, m) for f, start, s, m in counts if f is not None and f.value >= start), None)
+    if over is None:
+        return
+    figure, start, source, mark = over
     yield Remark(
         "warning",
         facts.path("charge"),
         f"The law asks for a leakage detection system on {facts.title}, and none is written.",
         (
             facts.plant.figure(figure.title, figure.value, Kind.MASS, 0),
-            facts.plant.figure("duty from", entry.value, Kind.MASS, 0),
+            facts.plant.figure("duty from", start, Kind.MASS, 0),
         ),
         "Fit one that calls the operator and have it checked every 12 months; write leak_detector under the space.",
-        entry.source,
-        entry.mark,
+        source,
+        mark,
     )
 
 
