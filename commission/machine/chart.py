@@ -119,7 +119,7 @@ def _row(
     fluid, compression = circuit.machine.refrigerant, circuit.cycle(evaporating, condensing)[0]
     pressure, outlet = (
         circuit.high_side(evaporating, condensing)[0],
-        circuit.low_side(evaporating, circuit.machine.superheat)[0],
+        circuit.outlet(evaporating, circuit.machine.superheat),
     )
     discharge = fluid.vapour_from_enthalpy(pressure, compression.discharge_enthalpy, near)
     flow, gas = compression.flow, circuit.gas_heat(evaporating, circuit.machine.superheat, compression.flow)

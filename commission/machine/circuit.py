@@ -75,6 +75,7 @@ class SuctionLine:
 class Parts:
     """The parameters of a machine; temperature differences in K. A fault is another value of one of them.
 
+    `exchanger` is the effectiveness (0-1) of an exchanger between suction gas and liquid, 0 where there is none.
     `superheat` is what the valve is set to; it holds no more than `superheat_share` of the difference between the
     entering medium and evaporation, see `within_reach`.
     `suction_regulator` is the pressure (Pa) that a crankcase pressure regulator lets through at most;
@@ -92,6 +93,29 @@ class Parts:
     suction_regulator: float | None = None
     gas_pressure: float = 0.0
     superheat_share: float = SUPERHEAT_SHARE
+    exchanger: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Cycle:
+    """The cycle at given temperatures: states at evaporator outlet, suction port and condenser outlet, and heat that
+    the exchanger between gas and liquid passes on, in J/kg."""
+
+    compression: Compression
+    outlet: State
+    suction: State
+    liquid: State
+    exchanged: float
+
+    @property
+    def heat_from_source(self) -> float:
+        """Heat in W that the refrigerant takes up in the evaporator."""
+        return self.compression.flow * (self.outlet.h - self.liquid.h + self.exchanged)
+
+    @property
+    def heat_to_sink(self) -> float:
+        """Heat in W that the refrigerant gives up in the condenser or gas cooler."""
+        return self.compression.flow * (self.compression.discharge_enthalpy - self.liquid.h)
 
 
 class Circuit(ABC):
@@ -103,25 +127,39 @@ class Circuit(ABC):
     def __init__(self, machine: Parts, media: Media) -> None:
         self.machine = machine
         self.media = media
-        self._low: dict[tuple[float, float], tuple[State, State]] = {}
-        self._drives: dict[tuple[float, float], float] = {}
+        self._low: dict[tuple[float, float], State] = {}
+        self._suctions: dict[tuple[float, float], State] = {}
+        self._drives: dict[tuple[float, float, float], float] = {}
         self._end: State | None = None
-        self._cycles: dict[tuple[float, float, float], tuple[Compression, float, float]] = {}
+        self._cycles: dict[tuple[float, float, float], Cycle] = {}
 
-    def low_side(self, evaporating: float, superheat: float) -> tuple[State, State]:
-        """States at the evaporator outlet, with `superheat` (K), and at the suction port."""
+    def outlet(self, evaporating: float, superheat: float) -> State:
+        """State at the evaporator outlet, with `superheat` (K)."""
         if (evaporating, superheat) not in self._low:
-            m, fluid = self.machine, self.machine.refrigerant
-            outlet = fluid.vapour(evaporating + superheat, fluid.dew_pressure(evaporating))
-            line = m.suction_line
-            suction = outlet
-            if line.pressure_loss or line.heating_share or line.warming:
-                warmer = line.heating_share * (self.media.surroundings - outlet.T) + line.warming
-                suction = fluid.vapour(outlet.T + warmer, fluid.dew_pressure(evaporating - line.pressure_loss))
-            if m.suction_regulator is not None and suction.p > m.suction_regulator:
-                suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
-            self._low[evaporating, superheat] = (outlet, suction)
+            fluid = self.machine.refrigerant
+            self._low[evaporating, superheat] = fluid.vapour(evaporating + superheat, fluid.dew_pressure(evaporating))
         return self._low[evaporating, superheat]
+
+    def _exchanged(self, outlet: State, liquid: State) -> float:
+        """Heat in J/kg that the suction gas takes from the liquid: its share of what would warm it to the liquid, since
+        gas has the smaller specific heat (Kays & London, effectiveness)."""
+        if not self.machine.exchanger:
+            return 0.0
+        return self.machine.exchanger * (self.machine.refrigerant.vapour(liquid.T, outlet.p).h - outlet.h)
+
+    def _suction(self, evaporating: float, outlet: State, exchanged: float) -> State:
+        """State at the suction port: after the exchanger, the line and the regulator."""
+        if (evaporating, outlet.h + exchanged) in self._suctions:
+            return self._suctions[evaporating, outlet.h + exchanged]
+        m, fluid, line = self.machine, self.machine.refrigerant, self.machine.suction_line
+        suction = fluid.vapour_from_enthalpy(outlet.p, outlet.h + exchanged, outlet) if exchanged else outlet
+        if line.pressure_loss or line.heating_share or line.warming:
+            warmer = line.heating_share * (self.media.surroundings - suction.T) + line.warming
+            suction = fluid.vapour(suction.T + warmer, fluid.dew_pressure(evaporating - line.pressure_loss))
+        if m.suction_regulator is not None and suction.p > m.suction_regulator:
+            suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
+        self._suctions[evaporating, outlet.h + exchanged] = suction
+        return suction
 
     @abstractmethod
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
@@ -131,26 +169,30 @@ class Circuit(ABC):
     def high_states(self, balance: Balance) -> tuple[StatePoint, ...]:
         """States between compressor and valve, for tables and the diagram."""
 
-    def cycle(
-        self, evaporating: float, second: float, superheat: float | None = None
-    ) -> tuple[Compression, float, float]:
-        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W.
+    def around(self, evaporating: float, second: float, superheat: float | None = None) -> Cycle:
+        """The cycle between these temperatures (K).
 
         `superheat` (K) is that at the evaporator outlet, that of the setting where none is given.
         """
         held = self.machine.superheat if superheat is None else superheat
         if (evaporating, second, held) not in self._cycles:
-            outlet, suction = self.low_side(evaporating, held)
-            discharge, liquid = self.high_side(evaporating, second)
+            outlet, (discharge, liquid) = self.outlet(evaporating, held), self.high_side(evaporating, second)
+            exchanged = self._exchanged(outlet, liquid)
+            suction = self._suction(evaporating, outlet, exchanged)
             compressor, share = self.machine.compressor, self.media.speed_share
             compression = compressor.compress(self.machine.refrigerant, suction, discharge, share, self._end)
             self._end = compression.isentropic_end
-            source = compression.flow * (outlet.h - liquid.h)
-            sink = compression.flow * (compression.discharge_enthalpy - liquid.h)
-            self._cycles[evaporating, second, held] = compression, source, sink
+            self._cycles[evaporating, second, held] = Cycle(compression, outlet, suction, liquid, exchanged)
         return self._cycles[evaporating, second, held]
 
-    def source_drive(self, evaporating: float, second: float, entering: float) -> float:
+    def cycle(
+        self, evaporating: float, second: float, superheat: float | None = None
+    ) -> tuple[Compression, float, float]:
+        """Compression, heat taken from the source and heat given to the sink, both by the refrigerant, in W."""
+        found = self.around(evaporating, second, superheat)
+        return found.compression, found.heat_from_source, found.heat_to_sink
+
+    def source_drive(self, evaporating: float, second: float, superheat: float, entering: float) -> float:
         """Temperature that drives the evaporator with a medium that enters at `entering` (K).
 
         For blends it lies below the medium by the geometric mean of the differences at both ends, so that a dew point
@@ -159,15 +201,16 @@ class Circuit(ABC):
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
             return evaporating
-        if (evaporating, second) not in self._drives:
-            liquid, pressure = self.high_side(evaporating, second)[1], fluid.dew_pressure(evaporating)
-            self._drives[evaporating, second] = fluid.mean_evaporating_temperature(pressure, liquid.h)
-        mean, end = entering - self._drives[evaporating, second], entering - evaporating
+        if (evaporating, second, superheat) not in self._drives:
+            found = self.around(evaporating, second, superheat)
+            enters = found.liquid.h - found.exchanged
+            self._drives[evaporating, second, superheat] = fluid.mean_evaporating_temperature(found.outlet.p, enters)
+        mean, end = entering - self._drives[evaporating, second, superheat], entering - evaporating
         return entering - between(end, 2.0 * mean - end)
 
     def gas_heat(self, evaporating: float, superheat: float, flow: float) -> float:
         """Heat in W that superheats the gas inside the evaporator."""
-        return flow * (self.low_side(evaporating, superheat)[0].h - self.machine.refrigerant.dew(evaporating).h)
+        return flow * (self.outlet(evaporating, superheat).h - self.machine.refrigerant.dew(evaporating).h)
 
     def low_guess(self) -> tuple[float, ...]:
         """The unknowns of the low side to start from: one for a difference between medium and refrigerant, and the
@@ -206,7 +249,9 @@ class Circuit(ABC):
         compression, taken, _ = self.cycle(evaporating, second, superheat)
         gas = self.gas_heat(evaporating, superheat, compression.flow)
         wetted = 1.0 - self.dry_share(evaporating, second, superheat, self.entering(low))
-        given = exchanger.heat_from(source, self.source_drive(evaporating, second, self.entering(low)), wetted, gas)
+        given = exchanger.heat_from(
+            source, self.source_drive(evaporating, second, superheat, self.entering(low)), wetted, gas
+        )
         gap = (given - (taken - gas)) / (exchanger.heat_per_kelvin(source) * 10.0)
         return (gap, (source.inlet(-taken) - low[1]) / 10.0) if source.by_outlet else (gap,)
 
@@ -221,19 +266,20 @@ class Circuit(ABC):
     def point(self, balance: Balance) -> OperatingPoint:
         """All states of a balance."""
         fluid = self.machine.refrigerant
-        outlet, suction = self.low_side(balance.evaporating_temperature, balance.superheat)
+        found = self.around(balance.evaporating_temperature, self.second(balance), balance.superheat)
+        outlet, suction, compression = found.outlet, found.suction, balance.compression
         pressure, liquid = self.high_side(balance.evaporating_temperature, self.second(balance))
-        compression = balance.compression
         discharge = fluid.vapour_from_enthalpy(
             pressure, compression.discharge_enthalpy, near=compression.isentropic_end
         )
-        throttled = fluid.throttled(outlet.p, liquid.h)
+        before = fluid.throttled(liquid.p, liquid.h - found.exchanged) if found.exchanged else liquid
+        throttled = fluid.throttled(outlet.p, before.h)
         states = (
             StatePoint("1", "evaporator outlet", outlet.p, outlet.h, outlet.T, outlet.s),
             StatePoint("2", "compressor suction", suction.p, suction.h, suction.T, suction.s),
             StatePoint("3", "compressor discharge", discharge.p, discharge.h, discharge.T, discharge.s),
             *self.high_states(balance),
-            StatePoint("6", "before the valve", liquid.p, liquid.h, liquid.T, liquid.s),
+            StatePoint("6", "before the valve", before.p, before.h, before.T, before.s),
             StatePoint("7", "after the valve", throttled.p, throttled.h, throttled.T, throttled.s),
         )
         return OperatingPoint(
@@ -247,7 +293,7 @@ class Circuit(ABC):
             compressor_superheat=suction.T - fluid.dew_temperature(suction.p),
             subcooling=self.subcooling(balance),
             valve_outlet_temperature=throttled.T,
-            line_gain=balance.compression.flow * (suction.h - outlet.h),
+            line_gain=balance.compression.flow * (suction.h - outlet.h - found.exchanged),
             states=states,
             warnings=tuple(dict.fromkeys(w for s in (suction, discharge, throttled) for w in s.warnings)),
         )

@@ -150,7 +150,9 @@ def _one_by_one(
 def _balanced(grid: _Grid) -> tuple[dict[str, Array], Flags] | None:
     """All points on the free branch together, and which of them hold; None where there is no one smooth branch."""
     machine = grid.machine
-    smooth = machine.restriction is None and machine.suction_regulator is None and not machine.flash
+    smooth = (
+        machine.restriction is None and machine.suction_regulator is None and not (machine.flash or machine.exchanger)
+    )
     if not smooth or len(grid.sources) * len(grid.sinks) < 3 * TERMS:
         return None
     if len({s.air is None for s in grid.sources}) > 1:

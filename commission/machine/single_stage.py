@@ -115,8 +115,9 @@ class SingleStage(Parts):
     def _as_catalogued(self, superheat: float, subcooling: float) -> SingleStage:
         """The machine with the superheat and subcooling (K) of a catalogue, and without a suction line."""
         return replace(
-            self, superheat=superheat, subcooling=subcooling, subcooling_share=None, suction_line=SuctionLine()
-        )
+            self, superheat=superheat, subcooling=subcooling, subcooling_share=None, suction_line=SuctionLine(),
+            exchanger=0.0,
+        )  # fmt: skip
 
 
 def _balance(circuit: CondenserCircuit, start: Balance | None) -> Balance:
@@ -401,7 +402,7 @@ class CondenserCircuit(Circuit):
         compression, source, sink = self.cycle(evaporating, condensing, superheat)
         settled, inlet = self.media.sink.settled(sink), self.media.source.inlet(-source)
         through = replace(settled, capacity_rate=flow * settled.capacity_rate)
-        suction, limit = self.low_side(evaporating, superheat)[1].p, self.machine.suction_regulator
+        suction, limit = self.around(evaporating, condensing, superheat).suction.p, self.machine.suction_regulator
         if limit is not None and suction >= limit * (1 - 1e-9):
             regime = f"{REGULATED}, {regime}"
         return Balance(
@@ -411,7 +412,7 @@ class CondenserCircuit(Circuit):
             compression=compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, condensing, inlet),
+            source_drive=self.source_drive(evaporating, condensing, superheat, inlet),
             sink_drive=self.sink_drive(condensing),
             source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),

@@ -68,7 +68,7 @@ class Transcritical(Parts):
         Raises:
             NotCalculatedError: no balance within the range of the property data.
         """
-        unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine())
+        unit = replace(self, superheat=superheat, subcooling=subcooling, suction_line=SuctionLine(), exchanger=0.0)
         return GasCoolerCircuit(unit, media).gas_cooler_side(evaporating, start)
 
     def cycle_conductance(self, evaporating: float, outlet: float, media: Media) -> float:
@@ -160,7 +160,7 @@ class GasCoolerCircuit(Circuit):
             compression=compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, outlet, inlet),
+            source_drive=self.source_drive(evaporating, outlet, superheat, inlet),
             sink_drive=outlet,
             source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),

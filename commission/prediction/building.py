@@ -211,12 +211,14 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
     evaporator = Exchanger(levels.evaporator, rated.source_flow, exponent, air_share(facts, a), gas_share)
     condenser = Exchanger(levels.condenser, rated.sink_flow, exponent)
     regulator, greatest = suction_limits(facts, a)
+    part = system.suction_exchanger
+    exchanger = part.effectiveness or 0.0 if part is not None else 0.0
     machine: Machine
     if facts.transcritical:
         pressure = gas_cooler_pressure(facts, a)
         machine = Transcritical(
             facts.fluid, compressor, evaporator, condenser, superheat, 0.0, line, 0.0, regulator, pressure=pressure,
-            superheat_share=superheat_share,
+            superheat_share=superheat_share, exchanger=exchanger,
         )  # fmt: skip
     else:
         machine = SingleStage(
@@ -231,6 +233,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
             discharge_line_loss=a["discharge_line_loss"],
             suction_regulator=regulator,
             superheat_share=superheat_share,
+            exchanger=exchanger,
             head_pressure=head_pressure(facts, a),
             greatest_evaporating=greatest,
         )

@@ -115,9 +115,10 @@ def left_out(facts: Facts) -> tuple[str, ...]:
             "an evaporative condenser rejects heat by wet bulb, which this model does not carry yet"
         )
     notes = []
-    if system.suction_exchanger is not None:
+    if system.suction_exchanger is not None and system.suction_exchanger.effectiveness is None:
         notes.append(
-            "the exchanger between suction gas and liquid is not in the model: its effect is in the fitted levels"
+            "the exchanger between suction gas and liquid is not in the model, since its effectiveness is not stated: "
+            "its effect is in the fitted levels"
         )
     if system.controls.evaporator_pressure_regulator is not None:
         notes.append("the evaporator pressure regulator is not in the model: the values hold while it is wide open")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import itertools
+from collections.abc import Callable
 from itertools import pairwise
 
 import pytest
@@ -73,3 +74,24 @@ def test_subcooling_without_a_receiver_shrinks_with_the_load(models: dict[str, S
         room.predict({"heat_sink_inlet_temperature": t + KELVIN}).expected["subcooling"].value for t in (15, 36)
     )
     assert mild == pytest.approx(hot, abs=0.05)
+
+
+def test_a_stated_exchanger_between_gas_and_liquid_is_in_the_model(written: Callable[[str], LoadedPlant]) -> None:
+    """With its effectiveness stated the suction gas is warmer by half of the way to the liquid; without it a note says
+    that it is not in the model."""
+    text = """
+duty: cold_storage
+refrigerant: R-134a
+heat_source: {medium: air}
+heat_sink: {medium: air}
+suction_exchanger: {EFFECT}
+rated_points:
+  - {heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 4 kW,
+     power_input: 1.6 kW}
+"""
+    plain, with_one = (fit(written(text.replace("EFFECT", e)), "it") for e in ("", "effectiveness: 50 %"))
+    assert any("not in the model" in w for w in plain.predict().warnings)
+    found = with_one.predict()
+    assert not any("not in the model" in w for w in found.warnings)
+    warmer = found.expected["suction_temperature"].value - plain.predict().expected["suction_temperature"].value
+    assert 12 < warmer < 22

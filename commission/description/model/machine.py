@@ -198,4 +198,6 @@ class Lines(Part):
 class SuctionExchanger(Part):
     """An exchanger between suction gas and liquid."""
 
-    effectiveness: Fraction | None = Field(None, description="at the rated condition")
+    effectiveness: Fraction | None = Field(
+        None, description="rise of the suction gas over what would bring it to the temperature of the liquid"
+    )
