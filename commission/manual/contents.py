@@ -148,7 +148,7 @@ def _system(
     for sheet in test_sheets(plant, data):
         book.add(sheet)
     progress(f"tabulating {data.id}")
-    book.add(live_sheet(plant, data))
+    book.add(live_sheet(plant, data, store))
     book.add(day_sheet(plant, data))
     book.add(records_page(plant, data, archive, found, past))
     for record in archive.of(data.id):

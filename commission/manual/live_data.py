@@ -75,13 +75,16 @@ def _counted(plan: LivePlan) -> tuple[str, ...]:
     return tuple(k for k in dict.fromkeys((*plan.readings, *DERIVED)) if k not in settled)
 
 
-def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calculated | None) -> dict[str, Any]:
-    """All that the script needs, as plain data."""
+def live_data(
+    plant: PlantData, data: SystemData, plan: LivePlan, expected: Mapping[str, Any] | None
+) -> dict[str, Any]:  # fmt: skip
+    """All that the script needs, as plain data; `expected` is that of `expected_data`."""
     from commission.records import records_folder
     from commission.records.read import READING_KEYS
 
     instruments = plant.loaded.plant.instruments
-    derived = [k for k in DERIVED if k not in plan.readings and (found is None or k in found.bands.judged)]
+    judged = None if expected is None else {k for bands in expected["bands"] for k in bands}
+    derived = [k for k in DERIVED if k not in plan.readings and (judged is None or k in judged)]
     keys = [*plan.conditions, *plan.readings, *DERIVED, "barometric_pressure"]
     sheets = sorted(p.relative_to(records_folder(plant.loaded)).as_posix() for p in sheets_of(plant, data))
     return {
@@ -103,7 +106,7 @@ def live_data(plant: PlantData, data: SystemData, plan: LivePlan, found: Calcula
         "steady": _steady(data),
         "liquid": {side: _liquid(data, side) for side in ("source", "sink")},
         "saturation": saturation_rows(data.model.refrigerant) if data.model is not None else None,
-        "expected": None if found is None else _table(found),
+        "expected": expected,
     }
 
 
@@ -198,7 +201,8 @@ def _steady(data: SystemData) -> dict[str, float]:
     return {s.key: s.limit for s in checks if s.key in ("since_start", "since_defrost")}
 
 
-def _table(found: Calculated) -> dict[str, Any]:
+def expected_data(found: Calculated) -> dict[str, Any]:
+    """Table and bands as plain data."""
     table, bands, extras = found.table, found.bands, found.table.extras.items()
     return {
         "axes": [{"key": k, "points": [_short(x) for x in a]} for k, a in table.axes.items()],

@@ -17,8 +17,11 @@ WITH_EXTRA, WITH_SQUARE = 2, 1
 POINTS_PER_TERM = 1.5
 RUNAWAY = 1.5
 """A point that a series misses by more than so many bands is one that nothing follows."""
-MARGIN = 1.5
-"""The largest miss is taken half as large again: the points beside, at which it was found, are few."""
+MARGIN, NEAR = 1.5, {1: 1.0, 2: 1.0, 3: 0.9}
+"""The miss to reckon with is this times the largest at points beside. Of three conditions, the tenth of the points with
+the largest misses is left out: they lie in far corners of the range, where a coil dries or a flow runs away."""
+UNSEEN = 0.1
+"""The miss to reckon with, as a share of the band, where no point lies beside."""
 ROUNDS, MOST_DROPPED = 8, 0.35
 """Rounds in which the worst tenth of such points are left out, and the share of all that may be."""
 
@@ -36,7 +39,7 @@ class Series:
 
     A condition x enters as (x - centre) / half; the sum of a key among `logs` is the logarithm of its value. `left` is
     what remains at each point of the grid, the last axis fastest, zero where another regime holds. `errors` is the
-    largest miss to reckon with, from points beside, as a share of the deviation that a reading could just show.
+    miss to reckon with, from points beside, as a share of the deviation that a reading could just show.
     """
 
     centres: tuple[float, ...]
@@ -96,6 +99,13 @@ def _basis(scaled: Array, terms: Terms) -> Array:
         for n, power in enumerate(term):
             columns[:, column] *= polynomials[n][:, power]
     return columns
+
+
+def _to_reckon_with(errors: Array, share: float) -> list[float]:
+    """For each key the miss that goes with the series; a tenth of the band where no point lay beside."""
+    if not len(errors):
+        return [UNSEEN] * errors.shape[1]
+    return [MARGIN * float(x) for x in np.quantile(errors, share, axis=0)]
 
 
 class Fitting:
@@ -183,7 +193,7 @@ class Fitting:
             tuple(map(float, centres)), tuple(map(float, halves)), terms,
             {k: tuple(map(float, rows[:, n])) for n, k in enumerate(self.keys)}, used,
             {k: left[:, n] for n, k in enumerate(self.keys)},
-            {k: MARGIN * float(errors[:, n].max(initial=0.0)) for n, k in enumerate(self.keys)},
+            dict(zip(self.keys, _to_reckon_with(errors, NEAR[len(self.axes)]), strict=True)),
         )  # fmt: skip
         worst = float(np.quantile(errors.max(axis=1), 0.9)) if len(errors) else math.inf
         return series, (np.abs(gaps) / self.bands).max(axis=1), worst

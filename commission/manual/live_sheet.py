@@ -2,17 +2,24 @@
 
 from __future__ import annotations
 
+import json
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any
+from functools import partial
+from typing import TYPE_CHECKING, Any
 
 from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.live_data import Calculated, as_script, calculate, live_data
+from commission.manual.live_data import as_script, calculate, expected_data, live_data
 from commission.manual.live_plan import HOW, LivePlan, bare_plan, make_plan
 from commission.manual.showing import label_of, unit_of
+from commission.manual.store import Store, kept, package_digest
 from commission.quantities import NOMENCLATURE
+
+if TYPE_CHECKING:
+    from commission.prediction import SystemModel
 
 SCRIPTS = ("decision.js", "decision_vectors.js", "live_table.js", "live_export.js", "live_sheet.js")
 TITLE = "Live day sheet"
@@ -32,16 +39,18 @@ class Row:
     optional: bool = False
 
 
-def live_sheet(plant: PlantData, data: SystemData) -> Sheet:
-    """The page of one system. Without a calculation it still takes readings and gives the record."""
-    found: Calculated | None = None
+def live_sheet(plant: PlantData, data: SystemData, store: Store | None = None) -> Sheet:
+    """The page of one system. Without a calculation it still takes readings and gives the record.
+
+    `store` keeps what was calculated for the next build of the same description by the same package.
+    """
+    found: Mapping[str, Any] | None = None
     because = data.because
     if data.model is not None and data.rated is not None:
         plan = make_plan(plant.loaded, data.model, data.rated)
-        try:
-            found = calculate(plant, data.model, plan)
-        except NotCalculatedError as error:
-            because = str(error)
+        parts = ("live sheet", plant.loaded.digest, data.id, package_digest())
+        answer = json.loads(kept(store, parts, partial(_answer, plant, data.model, plan)))
+        found, because = answer["expected"], answer["because"]
     else:
         plan = bare_plan(plant.loaded, data.system)
     content = live_data(plant, data, plan, found)
@@ -66,6 +75,16 @@ def live_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "paper_sheet": data.page("day-sheet"),
     }
     return Sheet(data.page("live-sheet"), TITLE, data.group, "live_sheet.html", context, data.kicker, scripts=SCRIPTS)
+
+
+def _answer(plant: PlantData, model: SystemModel, plan: LivePlan) -> bytes:
+    """What is expected, or why nothing is, as JSON."""
+    answer: dict[str, Any] = {"expected": None, "because": None}
+    try:
+        answer["expected"] = expected_data(calculate(plant, model, plan))
+    except NotCalculatedError as error:
+        answer["because"] = str(error)
+    return json.dumps(answer).encode()
 
 
 def _row(plant: PlantData, data: SystemData, plan: LivePlan, key: str) -> Row:

@@ -7,6 +7,8 @@ import os
 import tempfile
 from collections.abc import Callable
 from contextlib import suppress
+from functools import cache
+from importlib.metadata import version
 from pathlib import Path
 from typing import Protocol
 
@@ -41,6 +43,19 @@ class FolderStore:
             with os.fdopen(handle, "wb") as file:
                 file.write(data)
             os.replace(name, self._folder / key)
+
+
+@cache
+def package_digest() -> str:
+    """SHA-256 of all modules and data of the package and of the property library's version: what a calculation follows
+    besides the plant's description."""
+    import commission
+
+    found = hashlib.sha256(version("CoolProp").encode())
+    folder = Path(commission.__file__).parent
+    for path in sorted(p for p in folder.rglob("*") if p.suffix in (".py", ".yaml")):
+        found.update(path.relative_to(folder).as_posix().encode() + b"\0" + path.read_bytes())
+    return found.hexdigest()
 
 
 def kept(store: Store | None, parts: tuple[object, ...], make: Callable[[], bytes]) -> bytes:

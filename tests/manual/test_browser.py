@@ -25,7 +25,7 @@ KINDS = (
     f"{SYSTEM}/what-it-is.html",
     f"{SYSTEM}/how-it-should-run.html", f"{SYSTEM}/saturation-table.html", f"{SYSTEM}/safety-figures.html",
     f"{SYSTEM}/checklist.html", f"{SYSTEM}/before-the-visit.html", f"{SYSTEM}/test-sheet.html",
-    f"{SYSTEM}/day-sheet.html", f"{SYSTEM}/records.html", f"{SYSTEM}/assumptions.html",
+    f"{SYSTEM}/day-sheet.html", f"{SYSTEM}/live-sheet.html", f"{SYSTEM}/records.html", f"{SYSTEM}/assumptions.html",
 )  # fmt: skip
 
 
