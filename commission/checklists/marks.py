@@ -7,6 +7,7 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from commission.checklists.language import Expression
+from commission.checklists.rendering import stands
 from commission.safety import charge_limits, hazards
 from commission.safety.facts import weaker
 
@@ -21,13 +22,13 @@ FROM_MEMORY = ("M", "M-low")
 
 def mark_with_figures(own: str, item: CheckedItem, facts: Facts) -> str:
     """The mark of an item's source, or that of a figure from memory in it where that is weaker."""
-    shown = (mark for name in used_names(item) for mark in figure_marks(name, facts))
+    shown = (mark for name in used_names(item, facts) for mark in figure_marks(name, facts))
     return weaker(own, *(mark for mark in shown if mark in FROM_MEMORY))
 
 
-def used_names(item: CheckedItem) -> tuple[str, ...]:
-    """Every name that the item's texts and target are filled in from."""
-    found = [name for template in item.texts.values() for name in _of_template(template)]
+def used_names(item: CheckedItem, facts: Facts) -> tuple[str, ...]:
+    """Every name that the item's texts and target show for one system; parts that are left out show none."""
+    found = [name for template in item.texts.values() for name in _of_template(template, facts)]
     found += [name for bound in item.must_read.values() if isinstance(bound, Expression) for name in bound.names]
     return tuple(dict.fromkeys(found))
 
@@ -42,12 +43,12 @@ def figure_marks(name: str, facts: Facts) -> Iterable[str]:
     return () if reader is None else reader(facts)
 
 
-def _of_template(template: Template) -> Iterator[str]:
+def _of_template(template: Template, facts: Facts) -> Iterator[str]:
     for part in template.parts:
         if isinstance(part, Expression):
             yield from part.names
-        elif not isinstance(part, str):
-            yield from _of_template(part)
+        elif not isinstance(part, str) and stands(part, facts):
+            yield from _of_template(part, facts)
 
 
 def _known(key: str) -> Callable[[Facts], Iterable[str]]:

@@ -68,7 +68,7 @@ def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
             parts.append(part)
             continue
         if isinstance(part, Template):
-            if _stands(part, facts):
+            if stands(part, facts):
                 inner, more = fill(part, facts)
                 parts.append(inner)
                 explained += more
@@ -79,7 +79,7 @@ def fill(template: Template, facts: Facts) -> tuple[str, tuple[Explained, ...]]:
     return "".join(parts), tuple(explained)
 
 
-def _stands(template: Template, facts: Facts) -> bool:
+def stands(template: Template, facts: Facts) -> bool:
     """Whether a part that can be left out stands: its condition is yes, and all its values are known."""
     barometric_pressure = facts.loaded.barometric_pressure
     when = template.when

@@ -177,7 +177,7 @@ def test_a_figure_from_memory_keeps_its_mark_in_the_item(yard: LoadedPlant) -> N
         facts = facts_of(yard, system_id, None, None)
         found = items(stages(yard, system_id))
         for checked in (item for stage in library() for item in stage.items if item.entry.id in found):
-            for name in used_names(checked):
+            for name in used_names(checked, facts):
                 for mark in figure_marks(name, facts):
                     shown = found[checked.entry.id].mark
                     assert mark not in FROM_MEMORY or weaker(mark, shown) == shown, (checked.entry.id, name)
