@@ -207,7 +207,7 @@ def test_oil_that_draws_water_is_named_with_its_vacuum(plant: LoadedPlant) -> No
 
 def test_oil_return_is_looked_at_on_every_circuit_that_is_piped(tmp_path: Path, plant: LoadedPlant) -> None:
     """By the glass at the smallest load; by the lowest speed where a machine shows no oil; never on a sealed unit."""
-    for system_id in ("cold-room", "freezer-room"):
+    for system_id in ("cold-room", "freezer-room", "shower-water"):
         assert "trim.oil-return" in fitted(plant, system_id)
     assert "1200 rpm" in fitted(plant, "dining-hall")["trim.oil-return-at-low-speed"].do
     for system_id in ("chiller", "tower-chiller", "water-heater"):
