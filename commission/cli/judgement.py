@@ -53,7 +53,7 @@ def not_compared(record: Record, loaded: LoadedPlant) -> list[str]:
     from commission.checklists import stages
 
     items = (item for stage in stages(loaded, record.system) for item in stage.items)
-    quantity = {item.id: item.quantity for item in items if item.rest_at is None}
+    quantity = {item.id: item.quantity for item in items if item.reading}
     written = {*record.readings, *record.conditions}
     return [
         f"the answer to {answer.item} is not compared; write it under readings as {quantity[answer.item]}, once"

@@ -53,31 +53,27 @@ def check_answers(
     by_reading = answered_by_reading(of_stage, read)
     for item in of_stage:
         if item.id in by_reading and item.id not in written and item.quantity is not None:
-            answers[item.id] = _as_read(item, read[item.quantity])
+            one = read[item.quantity]
+            answers[item.id] = CheckedAnswer(item.id, one.as_written, "done", one.value, None, one.remark)
     judge_together(reader, answers, by_id)
     unanswered = tuple(item.id for item in of_stage if item.id not in written and item.id not in by_reading)
     return answers, unanswered
 
 
 def answered_by_reading(items: Sequence[Item], read: Collection[str]) -> frozenset[str]:
-    """The ids of a stage's items that a reading answers: the only item of the stage that asks for that quantity.
+    """The ids of a stage's items that a reading answers: those that ask for a reading of the running plant.
 
-    Where several ask for it they ask at different moments (a pressure at rest and one while running, say), and a value
-    with the plant at rest is never one that is read while it runs: those are answered one by one.
+    So does the only item of its stage that asks for a quantity and holds it to nothing. A setting, a trip or a pressure
+    at rest is of another moment, whatever its quantity: it is answered by itself.
     """
     asked = [i.quantity for i in items if i.answer == "value"]
     return frozenset(
         i.id
         for i in items
-        if i.answer == "value" and i.quantity in read and asked.count(i.quantity) == 1 and i.rest_at is None
+        if i.answer == "value"
+        and i.quantity in read
+        and (i.reading or (i.must_read is None and i.rest_at is None and asked.count(i.quantity) == 1))
     )
-
-
-def _as_read(item: Item, reading: SiteReading) -> CheckedAnswer:
-    if _outside(item, reading.value):
-        reason = reading.remark or "it was read outside what it must be"
-        return CheckedAnswer(item.id, reading.as_written, "failed", reading.value, reason)
-    return CheckedAnswer(item.id, reading.as_written, "done", reading.value, None, reading.remark)
 
 
 def _check(

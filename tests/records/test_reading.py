@@ -162,17 +162,14 @@ def test_a_reading_answers_no_item_of_another_moment(write: Write, folder: Path)
     assert {"visit.suction", "visit.later"} <= set(record.unanswered)
 
 
-def test_a_reading_outside_what_an_item_allows_fails_it(write: Write, folder: Path) -> None:
-    """A bound that the checklist states for a reading is held, with the reading's remark as the reason."""
+def test_a_reading_answers_no_setting(write: Write, folder: Path) -> None:
+    """An item that holds its value to a fixed bound asks for a setting or a trip: no reading answers it."""
     own = folder / "checklists" / "own.yaml"
     old = "quantity: suction_pressure,"
     text = own.read_text(encoding="utf-8")
     assert old in text
     own.write_text(text.replace(old, f"{old} must_read: {{at_least: 3.5 bar g}},"), encoding="utf-8")
-    answer = read_record(write(), load_plant(folder)).answers["visit.suction"]
-    assert (answer.outcome, answer.reason) == ("failed", "it was read outside what it must be")
-    path = write(("where: service port}", "where: service port, remark: the valve hunts}"))
-    assert read_record(path, load_plant(folder)).answers["visit.suction"].reason == "the valve hunts"
+    assert "visit.suction" in read_record(write(), load_plant(folder)).unanswered
 
 
 def test_a_missing_file_and_a_list_are_refused(tmp_path: Path, loaded: LoadedPlant, write: Write) -> None:
