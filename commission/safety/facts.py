@@ -52,8 +52,9 @@ class Fact:
         return self.value if self.gauge is None else self.gauge + barometric_pressure
 
 
+@cache
 def load(name: str) -> Any:
-    """A data file of this room as plain data.
+    """A data file of this room as plain data, read once and never changed.
 
     Raises:
         FileNotFoundError: there is no such file (a fault of the package).
