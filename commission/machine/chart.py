@@ -1,161 +1,137 @@
-"""The cycle of a single stage as Chebyshev series over its dew temperatures, to evaluate it for many points at once.
+"""The cycle of a single stage as Chebyshev series, to evaluate it for many points at once. SI units.
 
-The compression depends on both dew temperatures (and on the air around the suction line), the liquid before the valve
-on condensing temperature and subcooling, and the temperature that drives the evaporator of a blend on evaporating
-temperature and enthalpy of that liquid. SI units.
+The compression depends on both dew temperatures and on how far the suction gas is above evaporation; the gas that
+leaves the evaporator on evaporating temperature and superheat; the liquid before the valve on condensing temperature
+and subcooling; the temperature that drives the evaporator of a blend on evaporating temperature and enthalpy of that
+liquid.
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from itertools import product
 
 import numpy as np
 from numpy.polynomial import chebyshev
 
-from commission.machine.operating_point import Media
-from commission.machine.single_stage import CondenserCircuit, SingleStage
+from commission.machine.single_stage import CondenserCircuit
 from commission.properties import State
 from commission.properties.lines import Array, nodes, series_at_nodes
 
 Ends = tuple[float, float]
-Flags = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
-TERMS, LIQUID_TERMS = 8, 5
-"""Terms of the series in each dew temperature, and in the subcooling or the enthalpy of the liquid."""
-COLUMNS = ("flow", "power", "outlet", "gas", "given", "discharge", "bubble")
-"""What is charted: flow (kg/s) and power (W); enthalpy flow (W) at the evaporator outlet, above its dew point, and at
-the discharge; temperatures (K) at the discharge port and of the bubble point."""
-
-
-@dataclass(frozen=True)
-class Surface:
-    """One quantity as a series over two variables between `ends`."""
-
-    ends: tuple[Ends, Ends]
-    series: Array
-
-    @classmethod
-    def of(cls, quantity: Callable[[float, float], float], ends: tuple[Ends, Ends], counts: tuple[int, int]) -> Surface:
-        """Chart `quantity` between the ends; a variable whose ends are one takes a single term."""
-        counts = tuple(n if high > low else 1 for n, (low, high) in zip(counts, ends, strict=True))  # type: ignore[assignment]  # two in, two out
-        x, y = (spread(e, n) for e, n in zip(ends, counts, strict=True))
-        return cls(ends, in_series(np.array([[quantity(a, b) for b in y] for a in x]), (0, 1)))
-
-    def at(self, x: Array, y: Array) -> Array:
-        """The quantity at points of any shape."""
-        along, across = (terms(v, e, n) for v, e, n in zip((x, y), self.ends, self.series.shape, strict=True))
-        return np.asarray(((along @ self.series) * across).sum(axis=-1))
+TERMS, SOME = 8, 5
+"""Terms of a series in a dew temperature, and in superheat or subcooling."""
 
 
 @dataclass(frozen=True)
 class Series:
-    """The chart of the compression at the surroundings of each sink: shape (sinks, columns, terms, terms)."""
+    """Quantities as a series over variables between `ends`; `table` has the shape (quantities, terms, terms, ...)."""
 
-    ends: tuple[Ends, Ends]
-    series: Array
+    ends: tuple[Ends, ...]
+    table: Array
 
-    def at(self, evaporating: Array, condensing: Array) -> dict[str, Array]:
-        """The columns at points of shape (any, any, sinks)."""
-        x, y = (terms(v, ends, TERMS) for v, ends in zip((evaporating, condensing), self.ends, strict=True))
-        sinks, columns = self.series.shape[:2]
-        flat = np.moveaxis(y, 2, 0).reshape(sinks, -1, TERMS)
-        inner = flat @ self.series.reshape(sinks, columns * TERMS, TERMS).transpose(0, 2, 1)
-        shape = (sinks, *y.shape[:2], columns, TERMS)
-        found = (inner.reshape(shape) * np.moveaxis(x, 2, 0)[..., None, :]).sum(axis=-1)
-        return dict(zip(COLUMNS, np.moveaxis(found, (0, 3), (3, 0)), strict=True))
+    @classmethod
+    def of(
+        cls, quantities: Callable[..., tuple[float, ...]], ends: tuple[Ends, ...], counts: tuple[int, ...]
+    ) -> Series:
+        """Chart `quantities` between the ends; a variable whose ends are one takes a single term."""
+        grid = [_spread(e, n) for e, n in zip(ends, counts, strict=True)]
+        values = np.array([quantities(*at) for at in product(*grid)])
+        table = values.T.reshape(-1, *(len(g) for g in grid))
+        for axis, along in enumerate(grid, 1):
+            if len(along) > 1:
+                table = np.moveaxis(series_at_nodes(np.moveaxis(table, axis, -1)), -1, axis)
+        return cls(ends, table)
+
+    def at(self, *values: Array) -> Array:
+        """The quantities at points of any one shape: shape (quantities, *shape)."""
+        shape, found = values[0].shape, self.table[:, None]
+        for n, (value, ends) in enumerate(zip(values, self.ends, strict=True)):
+            count = self.table.shape[n + 1]
+            if count == 1:
+                found = found[:, :, 0]
+                continue
+            along = _terms(value.reshape(-1), ends, count)
+            if found.shape[1] == 1:  # the first of them
+                found = np.tensordot(along, found[:, 0], (1, 1)).swapaxes(0, 1)
+            else:
+                found = np.einsum("qnc...,nc->qn...", found, along)
+        return np.broadcast_to(found, (len(self.table), int(np.prod(shape)))).reshape(-1, *shape)
 
 
 @dataclass(frozen=True)
 class Chart:
-    """Charts of compression, liquid and drive; `compression` has the shape (columns, terms around, terms, terms).
+    """`compression`: flow (kg/s), power (W), enthalpy flow (W) and temperature (K) at the discharge. `gas`: enthalpy at
+    the evaporator outlet, and above its dew point (J/kg). `bubble`: bubble point (K). `liquid`: enthalpy before the
+    valve (J/kg). `drive`: temperature (K) that drives the evaporator, None for a pure fluid."""
 
-    `ends` are those of evaporating, condensing and surrounding temperature (K). `drive` is None for a pure fluid.
-    """
-
-    ends: tuple[Ends, Ends, Ends]
-    compression: Array
-    liquid: Surface
-    drive: Surface | None
+    compression: Series
+    gas: Series
+    bubble: Series | None
+    liquid: Series
+    drive: Series | None
 
     @classmethod
-    def of(
-        cls, machine: SingleStage, media: Callable[[float], Media], ends: tuple[Ends, Ends, Ends], subcooling: Ends,
-        around_terms: int,
-    ) -> Chart:  # fmt: skip
-        """Chart the cycle between `ends`; `media` makes the condition at a temperature around the suction line.
+    def of(cls, circuit: CondenserCircuit, ends: Sequence[Ends], terms: int) -> Chart:
+        """Chart the cycle between `ends` of evaporating and condensing temperature, of suction gas above evaporation,
+        of superheat and of subcooling (K).
 
         Raises:
             NotCalculatedError: the cycle cannot be calculated all over that range.
         """
-        first, second, third = ends
-        heated = machine.suction_line.heating_share != 0.0 and third[1] > third[0]
-        levels = spread(third, around_terms) if heated else [third[0]]
-        table = np.empty((len(COLUMNS), len(levels), TERMS, TERMS))
-        for k, around in enumerate(levels):
-            circuit = CondenserCircuit(machine, media(around))
-            near: State | None = None
-            for j, condensing in enumerate(spread(second, TERMS)):  # compressions to one pressure lie near each other
-                for i, evaporating in enumerate(spread(first, TERMS)):
-                    table[:, k, i, j], near = _row(circuit, evaporating, condensing, near)
-        liquid = Surface.of(lambda c, s: circuit.liquid(c, s).h, (second, subcooling), (TERMS, LIQUID_TERMS))
-        return cls(ends, in_series(table, (1, 2, 3)), liquid, _drive(machine, first, liquid))
+        evaporating, condensing, excess, superheat, subcooling = ends
+        fluid, near, suctions = circuit.machine.refrigerant, None, dict[tuple[float, float], State]()
 
-    def along(self, surroundings: Sequence[float]) -> Series:
-        """The compression at these temperatures (K) around the suction line."""
-        weights = terms(np.array(surroundings), self.ends[2], self.compression.shape[1])
-        return Series(self.ends[:2], np.einsum("jk,qkec->jqec", weights, self.compression))
+        def compression(c: float, x: float, e: float) -> tuple[float, ...]:
+            nonlocal near
+            if (e, x) not in suctions:
+                loss = circuit.machine.suction_line.pressure_loss
+                suctions[e, x] = fluid.vapour(e + x, fluid.dew_pressure(e - loss))
+            found, near = _compressed(circuit, suctions[e, x], circuit.high_side(e, c)[0], near)
+            return found
 
-    def holds(self, evaporating: Array, condensing: Array, subcooling: Array) -> Flags:
-        """Which points lie inside the chart."""
-        (a, b), (c, d), (e, f) = *self.ends[:2], self.liquid.ends[1]
-        inside = (a <= evaporating) & (evaporating <= b) & (c <= condensing) & (condensing <= d)
-        return np.asarray(inside & (e - 1e-9 <= subcooling) & (subcooling <= f + 1e-9))
+        def gas(e: float, s: float) -> tuple[float, ...]:
+            outlet = circuit.outlet(e, s)
+            return outlet.h, outlet.h - fluid.dew(e).h
 
-
-def _row(
-    circuit: CondenserCircuit, evaporating: float, condensing: float, near: State | None
-) -> tuple[tuple[float, ...], State]:
-    """`COLUMNS` at one pair of dew temperatures, and the discharge; `near` is a neighbouring one."""
-    fluid, compression = circuit.machine.refrigerant, circuit.cycle(evaporating, condensing)[0]
-    pressure, outlet = (
-        circuit.high_side(evaporating, condensing)[0],
-        circuit.outlet(evaporating, circuit.machine.superheat),
-    )
-    discharge = fluid.vapour_from_enthalpy(pressure, compression.discharge_enthalpy, near)
-    flow, gas = compression.flow, circuit.gas_heat(evaporating, circuit.machine.superheat, compression.flow)
-    heats = flow * outlet.h, gas, flow * compression.discharge_enthalpy
-    return (flow, compression.power, *heats, discharge.T, circuit.bubble_temperature(condensing)), discharge
+        liquid = Series.of(lambda c, s: (circuit.liquid(c, s).h,), (condensing, subcooling), (TERMS, SOME))
+        bubble = drive = None
+        if fluid.is_blend:
+            corners = liquid.at(*(v.ravel() for v in np.meshgrid(condensing, subcooling)))
+            bubble = Series.of(lambda c: (circuit.bubble_temperature(c),), (condensing,), (TERMS,))
+            drive = Series.of(
+                lambda e, h: (fluid.mean_evaporating_temperature(fluid.dew_pressure(e), h),),
+                (evaporating, (float(corners.min()), float(corners.max()))),
+                (TERMS, TERMS),
+            )
+        return cls(
+            Series.of(compression, (condensing, excess, evaporating), (TERMS, terms, TERMS)),
+            Series.of(gas, (evaporating, superheat), (TERMS, SOME)),
+            bubble,
+            liquid,
+            drive,
+        )
 
 
-def _drive(machine: SingleStage, evaporating: Ends, liquid: Surface) -> Surface | None:
-    """Chart of the temperature that drives the evaporator of a blend."""
-    fluid = machine.refrigerant
-    if not fluid.is_blend:
-        return None
-    corners = liquid.at(*(v.ravel() for v in np.meshgrid(*map(np.array, liquid.ends))))
-    return Surface.of(
-        lambda e, h: fluid.mean_evaporating_temperature(fluid.dew_pressure(e), h),
-        (evaporating, (float(corners.min()), float(corners.max()))),
-        (TERMS, TERMS),
-    )
+def _compressed(
+    circuit: CondenserCircuit, suction: State, pressure: float, near: State | None
+) -> tuple[tuple[float, ...], State | None]:
+    """Quantities of the compression to `pressure` (Pa), and its end to start a like one; `near` is such an end."""
+    machine = circuit.machine
+    found = machine.compressor.compress(machine.refrigerant, suction, pressure, circuit.media.speed_share, near)
+    h, end = found.discharge_enthalpy, found.isentropic_end
+    discharge = machine.refrigerant.vapour_from_enthalpy(pressure, h, end)
+    return (found.flow, found.power, found.flow * h, discharge.T), end
 
 
-def terms(value: Array, ends: Ends, count: int) -> Array:
+def _terms(value: Array, ends: Ends, count: int) -> Array:
     """Chebyshev polynomials of `value` between `ends`, along a new last axis."""
     low, high = ends
-    scaled = (2.0 * value - low - high) / (high - low) if count > 1 else np.zeros_like(value)
-    return np.asarray(chebyshev.chebvander(scaled, count - 1))
+    return np.asarray(chebyshev.chebvander((2.0 * value - low - high) / (high - low), count - 1))
 
 
-def spread(ends: Ends, count: int) -> list[float]:
-    """Nodes of a series of `count` terms between `ends`."""
+def _spread(ends: Ends, count: int) -> list[float]:
+    """Nodes of a series of `count` terms between `ends`, one where they are one."""
     low, high = ends
-    return [float(v) for v in 0.5 * (low + high) + 0.5 * (high - low) * nodes(count)] if count > 1 else [low]
-
-
-def in_series(table: Array, axes: Sequence[int]) -> Array:
-    """Values at nodes along `axes` as coefficients of series."""
-    for axis in axes:
-        if table.shape[axis] > 1:
-            table = np.moveaxis(series_at_nodes(np.moveaxis(table, axis, -1)), -1, axis)
-    return table
+    return [float(v) for v in 0.5 * (low + high) + 0.5 * (high - low) * nodes(count)] if high > low else [low]

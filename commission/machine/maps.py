@@ -16,7 +16,7 @@ from functools import cached_property
 import numpy as np
 
 from commission.errors import NotCalculatedError
-from commission.machine.chart import TERMS, Chart, Ends, Flags, Series
+from commission.machine.chart import TERMS, Chart, Ends
 from commission.machine.circuit import PINCH, ROUNDING, SMALL
 from commission.machine.exchanger import DEPTH, LEAST_WETTED
 from commission.machine.operating_point import Balance, Media
@@ -25,8 +25,10 @@ from commission.machine.streams import Stream
 from commission.machine.wet_air import coil_heats
 from commission.properties.lines import Array
 
-AROUND_TERMS = 3, 4
-"""Terms of the chart in the temperature around the suction line, more where too few."""
+Flags = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]
+FEW, WIDE = 3, 2.0
+"""Terms of the chart in what the suction gas is above evaporation, one more from a range of so many kelvin; two more
+where too few."""
 EXACT = 5e-7
 """How well, relative, the chart must repeat the cycle at the corners of the map."""
 ENOUGH = 1e-8
@@ -163,54 +165,60 @@ def _balanced(grid: _Grid) -> tuple[dict[str, Array], Flags] | None:
     grid = replace(grid, machine=free)
     try:
         corners = {place: free.balance(grid.media(*place)) for place in grid.corners()}
-        chart = _chart(grid, corners)
+        found = _chart(grid, corners)
     except NotCalculatedError:
         return None
-    if chart is None:
+    if found is None:
         return None
-    found = _Balances(grid, chart.along(grid.surroundings), chart)
     low, condensing, settled = _newton(found, corners)
-    difference = found.difference(low)
-    evaporating = np.array([s.temperature for s in grid.sources])[:, None] - difference
-    values = {name: v[0] for name, v in found.at(evaporating[None], condensing[None]).items()}
-    values["dry"] = found.dry(difference, values["gas"])
-    settled &= machine.superheat_share * difference >= (1 + ROUNDING) * machine.superheat
-    settled &= chart.holds(evaporating, condensing, values["subcooling"]) & (values["dry"] < 1 - LEAST_WETTED)
+    values = found.at(low, condensing)
+    settled &= (values["inside"] > 0) & (values["dry"] < 1 - LEAST_WETTED)
     control, limit = machine.head_pressure, machine.greatest_evaporating
     if control is not None:
         settled &= condensing >= control.hold
     if limit is not None:
-        settled &= evaporating <= limit
+        settled &= values["evaporating"] <= limit
     if machine.greatest_feed is not None:
         settled &= False
-    return {"evaporating": evaporating, "condensing": condensing, **{k: values[k] for k in FOUND}}, settled
+    return {"condensing": condensing, **{k: values[k] for k in ("evaporating", *FOUND)}}, settled
 
 
-def _chart(grid: _Grid, corners: dict[tuple[int, int], Balance]) -> Chart | None:
-    """The chart with as few terms as repeat the corners; None where none do."""
-    found = corners.values()
-    circuits = [CondenserCircuit(grid.machine, grid.media(*place)) for place in corners]
-    cooled = [c.subcooled(c.second(b)) for c, b in zip(circuits, found, strict=True)]
-    dews = [b.evaporating_temperature for b in found], [b.condensing_temperature or np.nan for b in found]
-    ends = _ends(dews[0], 0.5), _ends(dews[1], 0.5), _ends(grid.surroundings, 0.0)
-    for terms in AROUND_TERMS:
-        chart = Chart.of(grid.machine, lambda around: grid.media(0, 0, around), ends, _ends(cooled, 0.1), terms)
-        if _repeats(grid, chart, corners):
-            return chart
-        if chart.compression.shape[1] == 1:
+def _chart(grid: _Grid, corners: dict[tuple[int, int], Balance]) -> _Balances | None:
+    """The equations on a chart with as few terms as repeat the corners; None where none do."""
+    found, cycles, cooled = list(corners.values()), [], []
+    for place, balance in corners.items():
+        circuit = CondenserCircuit(grid.machine, grid.media(*place))
+        second = circuit.second(balance)
+        cycles.append(circuit.around(balance.evaporating_temperature, second, balance.superheat))
+        cooled.append(circuit.subcooled(second))
+    bent = 0.3 if grid.machine.suction_line.heating_share else 0.1  # between the corners a warm line may pass them
+    ends = (
+        _ends([b.evaporating_temperature for b in found], 0.5),
+        _ends([b.condensing_temperature or np.nan for b in found], 0.5),
+        _ends([c.suction.T - b.evaporating_temperature for c, b in zip(cycles, found, strict=True)], bent),
+        _ends([b.superheat for b in found], 0.1),
+        _ends(cooled, 0.1),
+    )
+    few = FEW if ends[2][1] - ends[2][0] < WIDE else FEW + 1
+    for terms in (few, few + 2):
+        balances = _Balances(grid, Chart.of(circuit, ends, terms), ends)
+        if _repeats(balances, corners):
+            return balances
+        if ends[2][0] == ends[2][1]:
             return None
     return None
 
 
-def _repeats(grid: _Grid, chart: Chart, corners: dict[tuple[int, int], Balance]) -> bool:
+def _repeats(found: _Balances, corners: dict[tuple[int, int], Balance]) -> bool:
     """Whether the chart gives the heat of balances that were found without it."""
-    shape = len(grid.sources), len(grid.sinks)
-    evaporating, condensing = np.full(shape, np.mean(chart.ends[0])), np.full(shape, np.mean(chart.ends[1]))
+    shape = len(found.grid.sources), len(found.grid.sinks)
+    first = next(iter(corners.values()))
+    low, condensing = np.full(shape, first.unknowns[0]), np.full(shape, first.condensing_temperature or np.nan)
     for place, balance in corners.items():
-        evaporating[place], condensing[place] = balance.evaporating_temperature, balance.condensing_temperature
-    found = _Balances(grid, chart.along(grid.surroundings), chart).at(evaporating[None], condensing[None])
+        low[place], condensing[place] = balance.unknowns[0], balance.condensing_temperature
+    at = found.at(low, condensing)
     return all(
-        abs(found[name][0][place] / value - 1) < EXACT
+        abs(at[name][place] / value - 1) < EXACT
         for place, b in corners.items()
         for name, value in (
             ("source", b.heat_from_source), ("sink", b.heat_to_sink), ("power", b.compression.power),
@@ -221,7 +229,7 @@ def _repeats(grid: _Grid, chart: Chart, corners: dict[tuple[int, int], Balance])
 def _newton(found: _Balances, corners: dict[tuple[int, int], Balance]) -> tuple[Array, Array, Flags]:
     """The unknown of the low side (see `positive`) and the condensing temperature (K) of all points, and which of
     them have settled."""
-    grid, chart = found.grid, found.chart
+    grid = found.grid
     ends = np.array([[b.unknowns[0], b.condensing_temperature or np.nan] for b in corners.values()])
     plane = np.array([[1.0, grid.sources[i].temperature, grid.sinks[j].temperature] for i, j in corners])
     slopes = np.linalg.lstsq(plane, ends, rcond=None)[0]
@@ -230,7 +238,7 @@ def _newton(found: _Balances, corners: dict[tuple[int, int], Balance]) -> tuple[
     x, y = (a + b * source + c * sink for a, b, c in slopes.T)
     moved = np.full(x.shape, np.inf)
     for _ in range(20):
-        y = np.clip(y, *chart.ends[1])
+        y = np.clip(y, *found.ends[1])
         first, second = found.gaps(np.stack((x, x - STEP, x)), np.stack((y, y, y - STEP)))
         a, b = (first[0] - first[1]) / STEP, (first[0] - first[2]) / STEP
         c, d = (second[0] - second[1]) / STEP, (second[0] - second[2]) / STEP
@@ -246,11 +254,15 @@ def _newton(found: _Balances, corners: dict[tuple[int, int], Balance]) -> tuple[
 
 @dataclass(frozen=True)
 class _Balances:
-    """The equations of the balance for all points at once; arrays have the shape (any, sources, sinks)."""
+    """The equations of the balance for all points at once; arrays have the shape (..., sources, sinks).
+
+    `ends` are those of the chart: evaporating and condensing temperature, suction gas above evaporation, superheat,
+    subcooling.
+    """
 
     grid: _Grid
-    series: Series
     chart: Chart
+    ends: tuple[Ends, ...]
 
     @cached_property
     def _sink(self) -> tuple[Array, Array, Array]:
@@ -273,50 +285,69 @@ class _Balances:
         a, b, c, d = (np.array(f)[:, None] for f in figures)
         return a, b, c, d
 
-    def at(self, evaporating: Array, condensing: Array) -> dict[str, Array]:
-        """`FOUND` at dew temperatures (K), with what the balance needs beside them."""
-        value = self.series.at(evaporating, condensing)
-        known, _, rise = self._sink
-        machine, bubble = self.grid.machine, value["bubble"]
-        value["sink_drive"] = condensing
+    def at(self, low: Array, condensing: Array) -> dict[str, Array]:
+        """`FOUND` and what the balance needs beside them, at the unknown of the low side and the dew point (K)."""
+        machine, line, chart = self.grid.machine, self.grid.machine.suction_line, self.chart
+        warm = self._source[0]
+        evaporating = np.clip(warm - self.difference(low), *self.ends[0])
+        difference = warm - evaporating
+        superheat = _within_reach(machine.superheat, difference, machine.superheat_share)
+        around = np.array(self.grid.surroundings)
+        excess = superheat + line.heating_share * (around - evaporating - superheat) + line.warming
+        flow, power, given, discharge = chart.compression.at(condensing, excess, evaporating)
+        outlet, gas = chart.gas.at(evaporating, superheat)
+        bubble = condensing if chart.bubble is None else chart.bubble.at(condensing)[0]
+        sink_drive, subcooling = self._high(condensing, bubble)
+        liquid = chart.liquid.at(condensing, subcooling)[0]
+        source_drive = evaporating
+        if chart.drive is not None:
+            mean = warm - chart.drive.at(evaporating, liquid)[0]
+            source_drive = warm - _between(difference, 2.0 * mean - difference)
+        zone = np.sqrt(np.maximum(difference * (difference - superheat), 1e-12))
+        return {
+            "evaporating": evaporating,
+            "source": flow * (outlet - liquid),
+            "sink": given - flow * liquid,
+            "power": power,
+            "flow": flow,
+            "discharge": discharge,
+            "sink_drive": sink_drive,
+            "source_drive": source_drive,
+            "gas": flow * gas,
+            "dry": flow * gas / (machine.evaporator.gas_share * self._source[2] * zone),
+            "inside": self._inside(evaporating, condensing, excess, superheat, subcooling),
+        }
+
+    def _high(self, condensing: Array, bubble: Array) -> tuple[Array, Array]:
+        """Temperature that drives the condensers (K), and subcooling (K)."""
+        machine, (known, _, rise) = self.grid.machine, self._sink
+        drive = condensing
         if machine.refrigerant.is_blend:
             by_outlet = np.array([s.by_outlet for s in self.grid.sinks])
             mean = _between(bubble - known, condensing - known)
-            value["sink_drive"] = np.where(by_outlet, 0.5 * (condensing + bubble), known + mean)
+            drive = np.where(by_outlet, 0.5 * (condensing + bubble), known + mean)
         if machine.subcooling_share is None:
-            subcooling = np.full(bubble.shape, machine.subcooling)
-        else:
-            entering = np.where(rise > 0, np.maximum(known - rise * (value["sink_drive"] - known), COLDEST), known)
-            subcooling = _within_reach(machine.subcooling, bubble - entering, machine.subcooling_share)
-        liquid = self.chart.liquid.at(condensing, subcooling)
-        value["source"] = value["outlet"] - value["flow"] * liquid
-        value["sink"] = value["given"] - value["flow"] * liquid
-        value["source_drive"] = evaporating
-        if self.chart.drive is not None:
-            warm = self._source[0]
-            mean, end = warm - self.chart.drive.at(evaporating, liquid), warm - evaporating
-            value["source_drive"] = warm - _between(end, 2.0 * mean - end)
-        value["subcooling"] = subcooling
-        return value
+            return drive, np.full(bubble.shape, machine.subcooling)
+        entering = np.where(rise > 0, np.maximum(known - rise * (drive - known), COLDEST), known)
+        return drive, _within_reach(machine.subcooling, bubble - entering, machine.subcooling_share)
+
+    def _inside(self, *values: Array) -> Flags:
+        """Which points lie inside the chart."""
+        found = np.ones(values[0].shape, dtype=np.bool_)
+        for value, (low, high) in zip(values, self.ends, strict=True):
+            found &= (low - 1e-9 <= value) & (value <= high + 1e-9)
+        return found
 
     def difference(self, low: Array) -> Array:
         """Inlet of the source over evaporation (K) that goes with the unknown of the low side; see `positive`."""
         far = np.hypot(low, 2.0 * SMALL)
         return np.where(low > 0, 0.5 * (low + far), 2.0 * SMALL**2 / (far + np.abs(low)))
 
-    def dry(self, difference: Array, gas: Array) -> Array:
-        """`dry_share` of the circuit for arrays."""
-        machine = self.grid.machine
-        mean = np.sqrt(np.maximum(difference * (difference - machine.superheat), 1e-12))
-        return np.asarray(gas / (machine.evaporator.gas_share * self._source[2] * mean))
-
     def gaps(self, low: Array, condensing: Array) -> tuple[Array, Array]:
         """`low_gaps` and `sink_gap` of the circuit for arrays, in kelvin of the exchangers."""
         known, rate, conductance, per_kelvin = self._source
-        evaporating = np.clip(known - self.difference(low), *self.chart.ends[0])
-        value = self.at(evaporating, condensing)
-        machine, dry = self.grid.machine, self.dry(known - evaporating, value["gas"])
-        wetted = np.maximum(1.0 - dry, LEAST_WETTED)
+        value, machine = self.at(low, condensing), self.grid.machine
+        wetted = np.maximum(1.0 - value["dry"], LEAST_WETTED)
         units = wetted * conductance / rate
         if machine.evaporator.air_share is not None and all(s.air is not None for s in self.grid.sources):
             share = machine.evaporator.air_share
@@ -324,7 +355,7 @@ class _Balances:
         else:
             given = rate * -np.expm1(-units) * (known - value["source_drive"])
         given = given + value["gas"] * np.expm1(-units)
-        given = given - np.maximum(LEAST_WETTED - 1.0 + dry, 0.0) * conductance * DEPTH
+        given = given - np.maximum(LEAST_WETTED - 1.0 + value["dry"], 0.0) * conductance * DEPTH
         sink, sink_rate, _ = self._sink
         return (
             (given - value["source"] + value["gas"]) / per_kelvin,

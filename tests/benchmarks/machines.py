@@ -19,7 +19,7 @@ def machine(fluid: Refrigerant, air_share: float | None = None, heating_share: f
         Compressor(displacement, 0.95, 0.85, SHAPE, 0.05),
         Exchanger(900.0, 0.6, 0.5, air_share),
         Exchanger(900.0, 0.8, 0.5),
-        superheat=3.0,
+        superheat=6.0,
         subcooling=3.0,
         suction_line=SuctionLine(1.0, heating_share, 3.0),
         discharge_line_loss=0.4,
