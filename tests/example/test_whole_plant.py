@@ -83,3 +83,29 @@ def test_predict_answers_for_all_systems_in_the_promised_form(commission: Run, e
         for key, entry in found["expected"].items():
             assert set(entry) == {"value", "unit", "uncertainty"}, key
             assert entry["uncertainty"] is None or entry["uncertainty"] >= 0
+
+
+@pytest.mark.parametrize(
+    ("system", "at", "key", "low", "high"),
+    [
+        ("cold-room", "heat_source_inlet_temperature=5 °C,heat_sink_inlet_temperature=36 °C", "pressure_ratio", 3, 5),
+        ("freezer-room", "heat_source_inlet_temperature=-22 °C,heat_sink_inlet_temperature=36 °C",
+         "pressure_ratio", 8, 11),
+        ("dining-hall", "heat_source_inlet_temperature=30 °C,heat_source_wet_bulb=21 °C,"
+         "heat_sink_inlet_temperature=36 °C,compressor_speed=4500 rpm", "cooling_cop", 2.5, 3.5),
+        ("floor-heating", "heat_source_inlet_temperature=-12 °C,heat_source_relative_humidity=80 %,"
+         "heat_sink_outlet_temperature=40 °C,compressor_speed=5400 rpm", "heating_cop", 2.1, 3.0),
+        ("shower-water", "heat_source_inlet_temperature=-10 °C,heat_sink_inlet_temperature=14 °C,"
+         "heat_sink_outlet_temperature=65 °C", "heating_cop", 2.2, 3.2),
+    ],
+)  # fmt: skip
+def test_predict_at_answers_beyond_the_rated_points(
+    commission: Run, example_folder: Path, system: str, at: str, key: str, low: float, high: float
+) -> None:
+    """Each kind of system is predicted by the conditions that matter to it, beyond what its supplier states, and gives
+    what a practitioner expects there (common practice, no source)."""
+    conditions = [word for one in at.split(",") for word in ("--at", one)]
+    done = commission("predict", example_folder, "--system", system, *conditions, "--json")
+    assert done.returncode == 0, done.stderr
+    found = json.loads(done.stdout)["systems"][system]
+    assert low < found["expected"][key]["value"] < high
