@@ -5,7 +5,7 @@ from __future__ import annotations
 import dataclasses
 from collections.abc import Mapping
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import commission.prediction
 from commission.description import LoadedPlant
@@ -81,6 +81,3 @@ def record_text(page: Page) -> str:
     """The record as the page gives it."""
     page.click("#live-text")
     return page.input_value("#live-yaml")
-
-
-JudgedData = dict[str, Any]

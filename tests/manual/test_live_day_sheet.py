@@ -15,7 +15,8 @@ from commission.description import LoadedPlant, load_plant
 from commission.manual.live_bands import work_through
 from commission.manual.live_data import as_script, kind_data, saturation_rows
 from commission.manual.live_plan import DERIVED
-from commission.manual.live_sheet import in_sentence
+from commission.manual.live_sheet import in_sentence, live_sheet
+from commission.manual.store import FolderStore
 from commission.properties import refrigerant
 from commission.quantities import Display, Kind
 from tests.manual.live_sheets import calculated, plant_of, without_model, write_sheet
@@ -142,7 +143,22 @@ def test_labels_keep_their_abbreviations_in_a_sentence() -> None:
 @pytest.mark.parametrize("system", ["cold-room", pytest.param("dining-hall", marks=pytest.mark.long)])
 def test_a_sheet_is_small_enough_to_send(loaded: LoadedPlant, system: str, tmp_path: Path) -> None:
     """As a single file it stays below 150 kB, also with three axes, two further conditions and three regimes."""
-    assert write_sheet(plant_of(loaded, system), tmp_path).stat().st_size < 150_000
+    assert write_sheet(plant_of(loaded, system), tmp_path).stat().st_size < 150 * 1024
+
+
+def test_a_second_build_takes_the_table_from_the_store(
+    loaded: LoadedPlant, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """The same description and package give the same page without calculating again."""
+    plant = plant_of(loaded, "cold-room")
+    store = FolderStore(tmp_path / "kept")
+    first = live_sheet(plant, plant.systems[0], store)
+
+    def never(*_: object) -> None:
+        raise AssertionError("calculated again")
+
+    monkeypatch.setattr("commission.manual.live_sheet.calculate", never)
+    assert live_sheet(plant, plant.systems[0], store).context == first.context
 
 
 def test_a_system_that_cannot_be_calculated_still_has_a_sheet(loaded: LoadedPlant, tmp_path: Path) -> None:

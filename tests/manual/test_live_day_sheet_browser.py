@@ -25,7 +25,7 @@ CONDITION = {"v-heat_source_inlet_temperature": "2.0", "v-heat_sink_inlet_temper
 READ = {
     "v-heat_source_outlet_temperature": "\u22122.4", "v-suction_pressure": "2.25", "v-discharge_pressure": "12.9",
     "v-suction_temperature": "0.5", "v-discharge_temperature": "66", "v-liquid_temperature": "33.0",
-    "v-power_input": "1.52",
+    "v-power_input": "1.45",
 }  # fmt: skip
 BY_REFRIGERANT = {"cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop"}
 
