@@ -29,6 +29,8 @@ if TYPE_CHECKING:
     from commission.prediction import SystemModel
 
 Mode = Literal["trim", "test"]
+NO_SHEET = "no frozen test sheet: the guarantees are judged by the description as it stands today"
+"""Warning of a test that nobody prepared with a sheet."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -149,7 +151,7 @@ def judge(
     if sheet is not None and sheet.system != model.system_id:
         warnings.append(f"the test sheet is one of {sheet.system}, not of {model.system_id}")
     if mode == "test" and verdicts and sheet is None:
-        warnings.append("no frozen test sheet: the guarantees are judged by the description as it stands today")
+        warnings.append(NO_SHEET)
     warnings += [text for text in map(coarse, verdicts) if text]
     return Judgement(
         model.system_id, mode, found.conditions, found.measured, found.derived, found.expectations, found.deviations,

@@ -97,7 +97,7 @@ def guarantee_sentence(verdict: GuaranteeVerdict, display: Display) -> str:
     if verdict.measured is not None:
         said += f", {display.text(verdict.measured.value, kind)}"
         if verdict.budget is not None:
-            said += f" ± {display.spread(verdict.budget.expanded(), kind)} {display.spread_unit(kind)}"
+            said += f" ± {display.spread(verdict.budget.expanded(), kind)} {display.spread_unit(kind)}".rstrip()
         said += " measured"
     if verdict.decision is not None:
         low, high = verdict.decision.limit_low, verdict.decision.limit_high

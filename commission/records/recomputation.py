@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant, read_yaml
@@ -46,10 +46,13 @@ def recompute(loaded: LoadedPlant, filed: FiledRecord, model: SystemModel | None
         RecordError: the record no longer fits the description (an instrument that is gone, for example).
         NotCalculatedError: the system cannot be calculated as it is described today.
     """
+    from commission.acceptance.judgement import NO_SHEET
+
     read = read_yaml(filed.path, filed.path.name)
     data = {k: v for k, v in read.data.items() if k != FILED_KEY}
     record = check_record(filed.path, loaded, filed.file, read.content, data, read.positions, by_checklist=False)
     judgement = judged_by(loaded, record, None, model)
+    judgement = replace(judgement, warnings=tuple(w for w in judgement.warnings if w != NO_SHEET))  # left aside here
     now = versions()
     tools = ", ".join(f"{name} {number}" for name, number in now.items())
     label = (
