@@ -225,8 +225,9 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     (
         "Heat and efficiency",
         (
-            "cooling_capacity", "net_cooling_capacity", "sensible_heat_ratio", "heating_capacity", "refrigerant_flow",
-            "cooling_cop", "heating_cop", "carnot_cop", "running_share",
+            "cooling_capacity", "net_cooling_capacity", "sensible_heat_ratio", "heating_capacity",
+            "heating_capacity_with_defrosts", "refrigerant_flow", "cooling_cop", "heating_cop",
+            "heating_cop_with_defrosts", "carnot_cop", "running_share",
         ),
     ),
 )  # fmt: skip

@@ -103,6 +103,8 @@ class Plan:
     source_humidity: float
     surroundings: float | None
     power_factor: float
+    frost_share: float = 0.0
+    """Share of the heat that frost and defrosts take at 2 °C in damp air."""
 
     @property
     def own_conditions(self) -> dict[str, float]:
@@ -245,6 +247,7 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         source_humidity=rated.source_humidity,
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
+        frost_share=a["frost_share"] if facts.heats_from_air else 0.0,
     )
 
 

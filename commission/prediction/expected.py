@@ -18,6 +18,7 @@ from commission.machine import (
 )
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
+from commission.prediction.frost import with_defrosts
 
 ABOVE_CRITICAL = "above the critical point there is no condensing temperature"
 
@@ -63,6 +64,8 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     _high_side(plan, point, found)
     _add(found, "current", lambda: _current(facts, plan, power))
     _media(facts, plan, media, balance, found)
+    if facts.heats_from_air:
+        _frost(facts, plan, media, point, found)
     if facts.source_liquid is not None:
         del values["net_cooling_capacity"]
     return found
@@ -152,7 +155,18 @@ def beats_carnot(facts: Facts, values: Mapping[str, float]) -> bool:
 
 def frosts(facts: Facts, point: OperatingPoint) -> bool:
     """Whether an outdoor coil collects frost: its refrigerant is below freezing. In a cold room that is daily work."""
-    return heats(facts) and facts.source_liquid is None and point.balance.source_drive < 273.15
+    return facts.heats_from_air and point.balance.source_drive < 273.15
+
+
+def _frost(facts: Facts, plan: Plan, media: Media, point: OperatingPoint, found: Found) -> None:
+    """Averages over whole cycles of frost and defrost, where the coil is below freezing."""
+    if not frosts(facts, point):
+        for key in ("heating_capacity_with_defrosts", "heating_cop_with_defrosts"):
+            found.reasons[key] = "the coil is above freezing: it stays clean and is not defrosted"
+        return
+    heat, power = with_defrosts(plan.frost_share, media)
+    found.values["heating_capacity_with_defrosts"] = heat * found.values["heating_capacity"]
+    found.values["heating_cop_with_defrosts"] = heat / power * found.values["heating_cop"]
 
 
 def in_celsius(temperature: float) -> str:

@@ -65,6 +65,11 @@ class Facts:
         return self.fluid.name == "R-744"
 
     @property
+    def heats_from_air(self) -> bool:
+        """Whether heat is made from air, so that frost on the coil takes its share of it."""
+        return self.system.duty in ("space_heating", "water_heating") and self.source_liquid is None
+
+    @property
     def nominal(self) -> dict[str, float]:
         """The assumption list as plain values."""
         return {key: a.value for key, a in self.assumptions.items()}

@@ -246,6 +246,19 @@ def _bound(assumption: Assumption, value: float) -> float | None:
     return None
 
 
+def frost_notes(found: Fit) -> tuple[str, ...]:
+    """A sentence on rated points that are averages over frost and defrosts, for every prediction."""
+    places = [case.origin for case in found.cases if case.defrosts]
+    if not places:
+        return ()
+    word = "point at" if len(places) == 1 else "points at"
+    return (
+        f"the rated {word} {', '.join(places)} count frost and defrosts: they are met with "
+        f"{100 * found.values['frost_share']:.0f} % of the heat lost to them at 2 °C in damp air, and the sizes of the "
+        "machine are those of a clean coil",
+    )
+
+
 def doubts(found: Fit) -> tuple[str, ...]:
     """Sentences on rated points that do not look like those of one machine, for every prediction."""
     notes = []

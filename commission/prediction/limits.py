@@ -19,8 +19,15 @@ ON_THE_EDGE = 0.05
 
 def beyond_limits(facts: Facts, values: Mapping[str, float], conditions: Mapping[str, float]) -> tuple[str, ...]:
     """A sentence for each stated limit that the expected `values` (SI, keys of the nomenclature) lie beyond."""
+    values = {**values, "evaporating_temperature": suction_dew_point(values)}
     limits = (_envelope, _polynomials, _devices)
     return (*(text for limit in limits for text in limit(facts, values)), *_heating_limit(facts, conditions))
+
+
+def suction_dew_point(values: Mapping[str, float]) -> float:
+    """Dew point (K) at the suction port, which envelopes and polynomials count by: below that of the evaporator by the
+    loss of the line, and by what a crankcase pressure regulator holds back."""
+    return values["suction_temperature"] - values["compressor_superheat"]
 
 
 def inside(corners: Corners, x: float, y: float) -> bool:
@@ -57,7 +64,7 @@ def _envelope(facts: Facts, values: Mapping[str, float]) -> Iterator[str]:
     def shown(temperature: float) -> str:
         return facts.shown.of("evaporating_temperature", temperature)
 
-    where = f"{shown(point[0])} evaporating and {shown(point[1])} condensing"
+    where = f"{shown(point[0])} evaporating (at its suction) and {shown(point[1])} condensing"
     ends = ""
     for axis, word, other in ((1, "evaporating", "condensing"), (0, "condensing", "evaporating")):
         if found := _crossings(corners, point[axis] or 0.0, axis):

@@ -14,7 +14,7 @@ from commission.prediction.conditions import ConditionAxis, axes_of, complete, f
 from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
-from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system
+from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, frost_notes
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
 from commission.prediction.rated import reference
@@ -23,7 +23,10 @@ from commission.properties import Refrigerant
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 
 PROPERTY = "property source"
-RATED_FIGURES = ("cooling_capacity", "net_cooling_capacity", "heating_capacity", "compressor_power", "power_input")
+RATED_FIGURES = (
+    "cooling_capacity", "net_cooling_capacity", "heating_capacity", "heating_capacity_with_defrosts",
+    "compressor_power", "power_input",
+)  # fmt: skip
 """Quantities that carry the scatter of rated points about the fit themselves."""
 
 
@@ -306,7 +309,7 @@ class SystemModel:
             for key in RATED_FIGURES:
                 if key in nominal.values:
                     _add_part(parts[key], SCATTER, self.fit.scatter * nominal.values[key])
-            for key in ("cooling_cop", "heating_cop"):
+            for key in ("cooling_cop", "heating_cop", "heating_cop_with_defrosts"):
                 if key in nominal.values:
                     _add_part(parts[key], SCATTER, math.sqrt(2) * self.fit.scatter * nominal.values[key])
 
@@ -351,7 +354,7 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
         fitted=_fitted(facts, found),
         fit=found,
         facts=facts,
-        left_out=(*notes, *doubts(found)),
+        left_out=(*notes, *frost_notes(found), *doubts(found)),
     )
 
 

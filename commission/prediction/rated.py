@@ -18,6 +18,7 @@ from commission.prediction.building import (
 )
 from commission.prediction.compressors import estimate
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
+from commission.prediction.frost import counts_defrosts
 from commission.prediction.ratings import MEAN_BELOW_DEW, rating_difference
 from commission.properties import moist_air
 
@@ -44,6 +45,8 @@ class Datum:
 class Case:
     """One rated point: condition and data. `unit` holds where the condensing unit is rated apart from its cooler.
 
+    `defrosts` where heat and power are averages over frost and defrosts.
+
     `source_temperature` and `sink_temperature` (K) are those of the rating, at inlet or outlet as `conditions` say.
     """
 
@@ -53,6 +56,7 @@ class Case:
     data: tuple[Datum, ...]
     origin: str
     unit: UnitRating | None = None
+    defrosts: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,7 +160,7 @@ def _system_case(facts: Facts, number: int, point: RatedPoint) -> Case:
     sink = conditions.get("heat_sink_inlet_temperature", conditions.get("heat_sink_outlet_temperature"))
     assert source is not None
     assert sink is not None
-    return Case(source, sink, conditions, data, facts.origin(path))
+    return Case(source, sink, conditions, data, facts.origin(path), defrosts=counts_defrosts(facts, point))
 
 
 def _stated(facts: Facts, path: str, point: RatedPoint) -> tuple[Datum, ...]:

@@ -9,18 +9,24 @@ from commission.errors import NotCalculatedError
 from commission.machine import Balance, Compression
 from commission.prediction.building import Plan, media
 from commission.prediction.facts import Facts
+from commission.prediction.frost import with_defrosts
 from commission.prediction.rated import Case
 
 
 @dataclass(frozen=True, slots=True)
 class Seen:
-    """The model at a rated point. `balance` is None for a compressor alone, whose dew points are given."""
+    """The model at a rated point. `balance` is None for a compressor alone, whose dew points are given.
+
+    `heat_share` and `power_share` turn what a clean coil gives into the average over frost and defrosts.
+    """
 
     compression: Compression
     heat_from_source: float
     heat_to_sink: float
     fans: float
     balance: Balance | None
+    heat_share: float = 1.0
+    power_share: float = 1.0
 
 
 def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start: Seen | None) -> Seen:
@@ -37,7 +43,10 @@ def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start
         around = media(facts, plan, conditions)
         balance = plan.machine.balance(around, near)
         fans = plan.fans_at(around).counted(balance.sink_fan_share)
-        return Seen(balance.compression, balance.heat_from_source, balance.heat_to_sink, fans, balance)
+        heat, power = with_defrosts(plan.frost_share, around) if case.defrosts else (1.0, 1.0)
+        return Seen(
+            balance.compression, balance.heat_from_source, balance.heat_to_sink, fans, balance, heat, power
+        )  # fmt: skip
     rating = case.unit
     superheat = rating.superheat if rating.superheat is not None else a["rating_superheat"]
     subcooling = rating.subcooling if rating.subcooling is not None else a["rating_subcooling"]
@@ -62,9 +71,9 @@ def observed(seen: Seen, of: str) -> float:
         NotCalculatedError: a volumetric efficiency is stated, but no displacement that it could belong to.
     """
     if of in ("cooling_capacity", "heating_capacity"):
-        return seen.heat_from_source if of == "cooling_capacity" else seen.heat_to_sink
+        return seen.heat_from_source if of == "cooling_capacity" else seen.heat_share * seen.heat_to_sink
     if of == "power_input":
-        return seen.compression.power + seen.fans
+        return seen.power_share * (seen.compression.power + seen.fans)
     if of in ("compressor_power", "refrigerant_flow"):
         return seen.compression.power if of == "compressor_power" else seen.compression.flow
     if of == "isentropic_efficiency":

@@ -19,7 +19,7 @@ CONDUCTANCES = (2, 3)
 SIZE = 1.0
 """Standard uncertainty of a conductance about its start, as a logarithm: without it, points that ask for a better
 machine than there is would be met by exchangers without end (common practice, no source)."""
-ROUNDS, TRIALS = 25, 10
+ROUNDS, TRIALS = 5, 10
 GAIN = 0.01
 """Gain in the sum of squares, over their mean, that ends the search: a tenth of a standard uncertainty is then left."""
 SMALL, NEAR = 1e-3, 1.0

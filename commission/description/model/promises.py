@@ -61,7 +61,9 @@ class RatedPoint(Conditions):
         None, description="net: the heat of the evaporator fan is deducted from the cooling capacity; gross: it is not"
     )
     frost_included: YesNo | None = Field(
-        None, description="yes where the capacity is an average over frost and defrost"
+        None,
+        description="yes where heat and power are averages over frost and defrost: the point then tells the share of "
+        "heat lost to them, beside the size of the machine",
     )
     includes: tuple[Included, ...] | None = Field(None, description="what the power input counts")
     source: str | None = Field(None, description="document it is read from")

@@ -44,7 +44,7 @@ def discharge_too_hot(facts: SystemFacts) -> Iterator[Remark]:
 def outside_envelope(facts: SystemFacts) -> Iterator[Remark]:
     """An expected operating point outside the application envelope that is written of the compressor.
 
-    Source: the maker's envelope: a polygon of evaporating and condensing temperatures, corners in order.
+    Source: the maker's envelope: a polygon of dew points at suction and discharge, corners in order.
     """
     from commission.prediction.limits import inside
 
@@ -54,7 +54,11 @@ def outside_envelope(facts: SystemFacts) -> Iterator[Remark]:
     for name in OUTLOOKS:
         evaporating = facts.expected(name, "evaporating_temperature")
         condensing = facts.expected(name, "condensing_temperature")
-        if evaporating is None or condensing is None or inside(corners, evaporating.value, condensing.value):
+        gas, superheat = facts.expected(name, "suction_temperature"), facts.expected(name, "compressor_superheat")
+        if evaporating is None or condensing is None:
+            continue
+        at_suction = evaporating.value if gas is None or superheat is None else gas.value - superheat.value
+        if inside(corners, at_suction, condensing.value):
             continue
         yield Remark(
             facts.severity(name, "warning"),
