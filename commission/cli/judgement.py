@@ -32,7 +32,7 @@ def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     lines += _listed(
         "route refused", (f"{NOMENCLATURE[r.key].label} by {r.route}: {r.reason}" for r in judgement.refusals)
     )
-    lines += _listed("not judged", (f"{_label(key)}: {reason}" for key, reason in judgement.not_judged.items()))
+    lines += _listed("no expectation", (f"{_label(key)}: {reason}" for key, reason in judgement.not_judged.items()))
     lines += _listed("mind", judgement.warnings)
     lines += ["", f"verdict: {_verdict(judgement, display)}"]
     return "\n".join(lines)
