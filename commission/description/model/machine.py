@@ -119,6 +119,11 @@ class CoolerRating(Part):
     temperature_difference: TemperatureDifference = Field(
         description="air on minus evaporating, or condensing minus air on"
     )
+    at: Literal["dew", "mean"] | None = Field(
+        None,
+        description="of blends: whether that difference counts to the dew point, or to the mean of the glide (between "
+        "inlet and dew point of an evaporator, between dew and bubble point of a condenser)",
+    )
     capacity: Capacity = Field(description="heat transferred at that difference")
     surface: Literal["dry", "wet", "frosted"] | None = Field(None, description="state of the surface in the rating")
     source: str | None = Field(None, description="document it is read from")
@@ -141,7 +146,9 @@ class Evaporator(Part):
     """The exchanger that takes heat from the source."""
 
     type: Literal["air coil", "plate", "shell and tube", "coaxial"] | None = Field(None, description="how it is built")
-    conductance: Conductance | None = Field(None, description="UA at the rated condition")
+    conductance: Conductance | None = Field(
+        None, description="UA at the rated condition with all its surface wetted; what superheats gas counts apart"
+    )
     rating: CoolerRating | None = Field(None, description="catalogue rating of an air cooler")
     fan_power: Power | None = Field(None, description="electric power of its fans")
     internal_volume: Volume | None = Field(None, description="refrigerant side")
