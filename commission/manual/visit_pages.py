@@ -13,17 +13,27 @@ from commission.manual.showing import label_of, unit_of
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
+    from collections.abc import Mapping
+
     from commission.records import FiledRecord
     from commission.records.filed import FrozenClosure, FrozenDeviation, FrozenGuarantee, FrozenReading
+    from commission.records.model import Answer, Measured
 
 
-def _reading(display: Display, key: str, r: FrozenReading) -> dict[str, str]:
-    """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it."""
+def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str, Measured]) -> dict[str, str]:
+    """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it.
+
+    Phases are shown one by one, and what the person remarked beside the value is kept with its place.
+    """
     number = any(c.isdigit() for c in r.written[:2])
+    written = r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}"
+    said = by_hand.get(key)
+    if said is not None and said.phases:
+        written = f"{', '.join(said.phases)}; mean {display.of(key, r.value)}"
     return {
         "label": label_of(key),
-        "written": r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}",
-        "where": r.where or "",
+        "written": written,
+        "where": "; ".join(text for text in (r.where, said and said.remark) if text),
         "instrument": r.instrument or "not stated",
     }
 
@@ -139,7 +149,7 @@ def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Ar
         "name": title_of(record),
         "look": VERDICT_CLASS[record.verdict],
         "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [_reading(display, k, r) for k, r in filed.conditions.items()],
+        "conditions": [_reading(display, k, r, file.conditions) for k, r in filed.conditions.items()],
         "air": f"{filed.barometric_pressure / 100:.0f} hPa"
         + ("" if filed.barometer_measured else ", not measured: from the altitude"),
         "guarantees": [_guarantee(display, g) for g in filed.guarantees],
@@ -159,18 +169,40 @@ def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Ar
     }
 
 
+def _answers(plant: PlantData, data: SystemData, record: FiledRecord) -> list[tuple[str, list[tuple[str, str, str]]]]:
+    """What was answered, in the order of the checklist: stage, and of each item the act, the answer and the words
+    beside it. An item that the list no longer has stands last, by its id."""
+    from commission.checklists import stages
+
+    left = dict(record.file.answers)
+    found = []
+    for stage in stages(plant.loaded, data.id):
+        rows = [_answer(item.do, left.pop(item.id)) for item in stage.items if item.id in left]
+        if rows:
+            found.append((stage.title, rows))
+    if left:
+        found.append(("No longer on the checklist", [_answer(key, answer) for key, answer in left.items()]))
+    return found
+
+
+def _answer(act: str, answer: Answer) -> tuple[str, str, str]:
+    return act, answer.answer, "; ".join(text for text in (answer.reason, answer.remark, answer.by) if text)
+
+
 def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
     """One visit as it was filed."""
     display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
     filed = record.filed
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
-    alone = [_reading(display, k, r) for k, r in filed.readings.items() if k not in filed.deviations]
+    by_hand = record.file.readings
+    alone = [_reading(display, k, r, by_hand) for k, r in filed.readings.items() if k not in filed.deviations]
     corrected = archive.corrected.get(record.id)
     context = {
         **_shared(plant, data, record, archive),
         "deviations": judged,
         "alone": alone,
+        "answers": _answers(plant, data, record),
         "not_judged": [(label_of(k), why) for k, why in filed.not_judged.items()],
         "routes": [
             (r.route, label_of(r.quantity), None if r.value is None else display.of(r.quantity, r.value), r.refused)
