@@ -90,6 +90,21 @@ def test_review_finds_an_altered_record(commission: Run, example_copy: Path) -> 
     assert TESTED in done.stdout
 
 
+def test_review_names_what_is_missing_and_what_was_never_filed(commission: Run, example_copy: Path) -> None:
+    """A filed record that is gone is an error and leaves with 1; a file that nobody filed is named and does not."""
+    folder = example_copy / "records"
+    (folder / "stray.yaml").write_text("system: cold-room\n", encoding="utf-8")
+    before = commission("review", example_copy)
+    assert "stray.yaml" in before.stdout
+    (folder / TESTED).unlink()
+    after = commission("review", example_copy)
+    assert after.returncode == 1
+    assert TESTED in after.stdout
+    assert "missing" in after.stdout
+    errors = [int(m.group(1)) if (m := re.search(r"(\d+) error", d.stdout)) else 0 for d in (before, after)]
+    assert errors[1] == errors[0] + 1
+
+
 def test_a_frozen_sheet_is_written_once(commission: Run, example_copy: Path) -> None:
     """A sheet frozen over a range starts with its digest; the same name with another range is refused."""
     options = ("--system", "cold-room", "--freeze", "august")
