@@ -32,9 +32,9 @@ WIDE_SCATTER = 0.05
 (common practice, no source)."""
 
 
-CONSIDERED = frozenset({"source_flow_departure", "sink_flow_departure", "source_humidity"})
-"""Assumptions about the condition, not about the machine: the rated points do not move them, or a rated flow would be
-shown as another than the stated one. Their ranges count in full."""
+CONSIDERED = frozenset({"source_flow_departure", "sink_flow_departure", "source_humidity", "rating_to_the_mean"})
+"""Assumptions about the condition or about what a catalogue means, not about the machine: the rated points do not move
+them, or a rated flow would be shown as another than the stated one. Their ranges count in full."""
 
 
 @dataclass(frozen=True)

@@ -92,7 +92,7 @@ def _evaporator(facts: Facts, a: Mapping[str, float], rated: Rated, case: Case) 
     rating = part.rating
     assert rating is not None
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
-    difference = rating_difference(facts)
+    difference = rating_difference(facts, a)
     assert difference is not None
     superheat = RATED_SUPERHEAT * difference
     return wetted_conductance(facts, known, rating.capacity, air_on, difference, share, superheat)

@@ -316,7 +316,7 @@ def _source_difference(facts: Facts, a: Mapping[str, float], inlet: float, given
         return inlet - given["evaporating_temperature"]
     if facts.system.evaporator.conductance is not None:
         return None
-    rated = rating_difference(facts)
+    rated = rating_difference(facts, a)
     if rated is not None:
         return rated
     assumed = a["source_minus_evaporating"]

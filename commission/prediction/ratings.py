@@ -29,22 +29,31 @@ def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: fl
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
     capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
     share = air_share(facts, a) if rating.surface != "dry" else None
-    dew = rating_difference(facts)
+    dew = rating_difference(facts, a)
     assert dew is not None
-    difference = between(dew, 2 * rating.temperature_difference - dew)
+    glide = facts.glide(air_on - rating.temperature_difference)
+    difference = between(dew, dew + 2 * MEAN_BELOW_DEW * glide)
     return _rating("evaporator", capacity, difference, medium, share)
 
 
-def rating_difference(facts: Facts) -> float | None:
+def _to_the_mean(facts: Facts, a: Mapping[str, float], at: str | None) -> float:
+    """How far a rating counts from the dew point (0) to the mean of the glide (1), as stated, else as assumed."""
+    if at is not None or not facts.fluid.is_blend:
+        return float(at != "dew")
+    return a["rating_to_the_mean"]
+
+
+def rating_difference(facts: Facts, a: Mapping[str, float]) -> float | None:
     """Air on minus dew point in K at the catalogue rating of the evaporator; None where it has none.
 
-    The rating counts to the mean along the evaporator, which lies below the dew point by a third of the glide.
+    The mean along the evaporator lies below the dew point by a third of the glide.
     """
     rating = facts.system.evaporator.rating
     if rating is None:
         return None
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
-    return rating.temperature_difference - MEAN_BELOW_DEW * facts.glide(air_on - rating.temperature_difference)
+    glide = facts.glide(air_on - rating.temperature_difference)
+    return rating.temperature_difference - _to_the_mean(facts, a, rating.at) * MEAN_BELOW_DEW * glide
 
 
 def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float) -> float | None:
@@ -59,7 +68,8 @@ def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float
     medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
     capacity = rating.capacity * (1.0 + a["condenser_rating_departure"])
     half = 0.5 * facts.glide(air_on + rating.temperature_difference)
-    difference = between(rating.temperature_difference - half, rating.temperature_difference + half)
+    mean = rating.temperature_difference - (1 - _to_the_mean(facts, a, rating.at)) * half
+    difference = between(mean - half, mean + half)
     return _rating("condenser", capacity, difference, medium)
 
 
