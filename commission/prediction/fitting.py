@@ -37,6 +37,10 @@ CONSIDERED = frozenset({"source_flow_departure", "sink_flow_departure", "source_
 them, or a rated flow would be shown as another than the stated one. Their ranges count in full."""
 
 
+PART = 0.05
+"""Part of a standard uncertainty over which slopes are taken."""
+
+
 @dataclass(frozen=True)
 class Variant:
     """A machine refitted with one cause moved by one standard uncertainty.
@@ -228,12 +232,21 @@ def _fit_table(problem: Problem, start: Levels, values: Used) -> Fit:
 
 
 def _considered(table: Table, x: Array, gaps: Array, points: Sequence[Seen], gain: Array, key: str) -> Variant:
-    """The refit with one assumption moved that the fit itself leaves alone; `gain` turns gaps into steps of `x`."""
+    """The refit with one assumption moved that the fit itself leaves alone; `gain` turns gaps into steps of `x`.
+
+    Where no machine is left that far, it is moved part of the way.
+    """
     assumption = table.problem.facts.assumptions[key]
-    moved = table.with_value(key, assumption.value + 0.05 * move(assumption))
-    slope = (moved.gaps(x, points)[0] - gaps) / 0.05
-    whole = table.with_value(key, assumption.value + move(assumption))
-    return Variant(key, whole.plan(x - gain @ slope), math.copysign(1.0, move(assumption)))
+    step = move(assumption)
+    slope = (table.with_value(key, assumption.value + PART * step).gaps(x, points)[0] - gaps) / PART
+    for part in (1.0, PART):
+        try:
+            plan = table.with_value(key, assumption.value + part * step).plan(x - part * (gain @ slope))
+        except NotCalculatedError as error:
+            refused = error
+            continue
+        return Variant(key, plan, math.copysign(1.0, step) / part)
+    raise refused
 
 
 def _bound(assumption: Assumption, value: float) -> float | None:
