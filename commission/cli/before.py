@@ -54,7 +54,7 @@ def before_visit(
 
 
 def columns_of(loaded: LoadedPlant, model: SystemModel, forecast: Mapping[str, float]) -> dict[str, tuple[float, ...]]:
-    """Multiples of 5 °C from 5 K below to 5 K above the forecast, along the condition that follows the weather.
+    """Multiples of 5 °C that cover the forecast and 5 K to either side, along the condition that follows the weather.
 
     Raises:
         InputError: no condition of this system follows the weather, or the forecast lies outside its range.
@@ -67,8 +67,8 @@ def columns_of(loaded: LoadedPlant, model: SystemModel, forecast: Mapping[str, f
         raise InputError(Problem("no condition of this system follows the weather", path="--over", allowed=allowed))
     axis = model.condition_axes[key]
     middle = forecast.get(key, axis.rated) - _ZERO_C
-    first = math.ceil(round((middle - AROUND) / AROUND, 6) - 0.5)
-    last = math.floor(round((middle + AROUND) / AROUND, 6) + 0.5)
+    first = math.floor(round((middle - AROUND) / AROUND, 6))
+    last = math.ceil(round((middle + AROUND) / AROUND, 6))
     found = [n * AROUND + _ZERO_C for n in range(first, last + 1)]
     inside = tuple(t for t in found if axis.low - 1e-6 <= t <= axis.high + 1e-6)
     if not inside:
