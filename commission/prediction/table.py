@@ -19,7 +19,8 @@ CONDUCTANCES = (2, 3)
 SIZE = 1.0
 """Standard uncertainty of a conductance about its start, as a logarithm: without it, points that ask for a better
 machine than there is would be met by exchangers without end (common practice, no source)."""
-ROUNDS, TRIALS = 5, 10
+ROUNDS, POINTS, TRIALS = 5, 60, 10
+"""Least Jacobians of a search, points that all of them together may take where the table is short, trials of a step."""
 GAIN = 0.01
 """Gain in the sum of squares, over their mean, that ends the search: a tenth of a standard uncertainty is then left."""
 SMALL, NEAR = 1e-3, 1.0
@@ -105,7 +106,7 @@ class Table:
         """
         gaps, plan, points = self.gaps(x, None)
         columns, damping = list(range(len(x))), 0.0
-        for _ in range(ROUNDS):
+        for _ in range(max(ROUNDS, POINTS // len(self.problem.cases))):
             matrix = self._jacobian(x, gaps, points, columns)
             columns = [n for n in range(len(x)) if np.abs(matrix[: len(gaps) - len(self.problem.loose), n]).max() > 0]
             origin, before, learnt = x, gaps, matrix
