@@ -139,7 +139,7 @@ def _sheet(body: str, name: str) -> TestSheet:
     import yaml
 
     try:
-        data = yaml.safe_load(body)
+        data = yaml.load(body, Loader=getattr(yaml, "CSafeLoader", yaml.SafeLoader))
         if not isinstance(data, dict) or data.get("form") != FORM:
             raise SheetError(Problem("not a test sheet of this form", file=name, path="form", allowed=FORM))
         return _build(data)

@@ -11,7 +11,7 @@ from commission.machine.compressor import Compression, Compressor
 from commission.machine.exchanger import Exchanger
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor
-from commission.properties import Refrigerant, State
+from commission.properties import Refrigerant, SaturationState, State
 
 SUPERHEAT_SHARE = 0.85
 """Greatest superheat that a valve holds steadily, over the difference between entering medium and evaporation (common
@@ -127,17 +127,24 @@ class Circuit(ABC):
     def __init__(self, machine: Parts, media: Media) -> None:
         self.machine = machine
         self.media = media
+        self._dews: dict[float, SaturationState] = {}
         self._low: dict[tuple[float, float], State] = {}
         self._suctions: dict[tuple[float, float], State] = {}
         self._drives: dict[tuple[float, float, float], float] = {}
         self._end: State | None = None
         self._cycles: dict[tuple[float, float, float], Cycle] = {}
 
+    def dew(self, evaporating: float) -> SaturationState:
+        """Dew point of the evaporator."""
+        if evaporating not in self._dews:
+            self._dews[evaporating] = self.machine.refrigerant.dew(evaporating)
+        return self._dews[evaporating]
+
     def outlet(self, evaporating: float, superheat: float) -> State:
         """State at the evaporator outlet, with `superheat` (K)."""
         if (evaporating, superheat) not in self._low:
-            fluid = self.machine.refrigerant
-            self._low[evaporating, superheat] = fluid.vapour(evaporating + superheat, fluid.dew_pressure(evaporating))
+            pressure = self.dew(evaporating).p
+            self._low[evaporating, superheat] = self.machine.refrigerant.vapour(evaporating + superheat, pressure)
         return self._low[evaporating, superheat]
 
     def _exchanged(self, outlet: State, liquid: State) -> float:
@@ -210,7 +217,7 @@ class Circuit(ABC):
 
     def gas_heat(self, evaporating: float, superheat: float, flow: float) -> float:
         """Heat in W that superheats the gas inside the evaporator."""
-        return flow * (self.outlet(evaporating, superheat).h - self.machine.refrigerant.dew(evaporating).h)
+        return flow * (self.outlet(evaporating, superheat).h - self.dew(evaporating).h)
 
     def low_guess(self) -> tuple[float, ...]:
         """The unknowns of the low side to start from: one for a difference between medium and refrigerant, and the
@@ -234,9 +241,11 @@ class Circuit(ABC):
         Up to a superheat of 0.8 of the inlet difference it is within 13 % of the logarithmic mean, beyond it asks for
         more surface, as circuits that share their load unevenly do; so gas never leaves as warm as the medium comes.
         """
-        flow, difference = self.cycle(evaporating, second, superheat)[0].flow, entering - evaporating
+        flow = self.around(evaporating, second, superheat).compression.flow
+        return self._dry_share(self.gas_heat(evaporating, superheat, flow), superheat, entering - evaporating)
+
+    def _dry_share(self, gas: float, superheat: float, difference: float) -> float:
         mean = math.sqrt(max(difference * (difference - superheat), 1e-12))
-        gas = self.gas_heat(evaporating, superheat, flow)
         return self.machine.evaporator.dry_share(self.media.source, gas, mean)
 
     def low_gaps(self, low: Sequence[float], evaporating: float, second: float, superheat: float) -> tuple[float, ...]:
@@ -245,13 +254,11 @@ class Circuit(ABC):
 
         A valve superheats by leaving surface dry, so that the evaporator has two zones with a moving boundary.
         """
-        source, exchanger = self.media.source, self.machine.evaporator
-        compression, taken, _ = self.cycle(evaporating, second, superheat)
-        gas = self.gas_heat(evaporating, superheat, compression.flow)
-        wetted = 1.0 - self.dry_share(evaporating, second, superheat, self.entering(low))
-        given = exchanger.heat_from(
-            source, self.source_drive(evaporating, second, superheat, self.entering(low)), wetted, gas
-        )
+        source, exchanger, entering = self.media.source, self.machine.evaporator, self.entering(low)
+        found = self.around(evaporating, second, superheat)
+        taken, gas = found.heat_from_source, self.gas_heat(evaporating, superheat, found.compression.flow)
+        wetted = 1.0 - self._dry_share(gas, superheat, entering - evaporating)
+        given = exchanger.heat_from(source, self.source_drive(evaporating, second, superheat, entering), wetted, gas)
         gap = (given - (taken - gas)) / (exchanger.heat_per_kelvin(source) * 10.0)
         return (gap, (source.inlet(-taken) - low[1]) / 10.0) if source.by_outlet else (gap,)
 

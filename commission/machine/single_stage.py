@@ -308,7 +308,7 @@ class CondenserCircuit(Circuit):
     def flow_per_area(self, evaporating: float, condensing: float) -> float:
         """Flow in kg/s through each m2 of effective area of a fixed restriction."""
         liquid = self.high_side(evaporating, condensing)[1]
-        return math.sqrt(2 * liquid.rho * max(liquid.p - self.machine.refrigerant.dew(evaporating).p, 1.0))
+        return math.sqrt(2 * liquid.rho * max(liquid.p - self.dew(evaporating).p, 1.0))
 
     def restricted(self, start: Balance | None) -> Balance:
         """A fixed restriction: its flow is that of the compressor, and the superheat follows.

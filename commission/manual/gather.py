@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from commission.description import Assumption, LoadedPlant, System
@@ -15,6 +16,7 @@ from commission.manual.remembering import remembering
 from commission.quantities import Display
 
 if TYPE_CHECKING:
+    from commission.acceptance import TestSheet
     from commission.prediction import Prediction, SystemModel
 
 
@@ -54,11 +56,12 @@ class SystemData:
 
 @dataclass(frozen=True, slots=True)
 class PlantData:
-    """Everything the pages show."""
+    """Everything the pages show. `sheets` are the frozen test sheets by name, a text where one cannot be read."""
 
     loaded: LoadedPlant
     display: Display
     systems: tuple[SystemData, ...]
+    sheets: Mapping[str, TestSheet | str] = MappingProxyType({})
 
     @property
     def name(self) -> str:
@@ -71,7 +74,7 @@ def gather(loaded: LoadedPlant, progress: Callable[[str], None]) -> PlantData:
     display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     names = slugs(tuple(loaded.plant.systems))
     systems = tuple(_system(loaded, identity, slug, progress) for identity, slug in names.items())
-    return PlantData(loaded, display, systems)
+    return PlantData(loaded, display, systems, _sheets(loaded))
 
 
 def gather_one(loaded: LoadedPlant, model: SystemModel) -> PlantData:
@@ -108,6 +111,18 @@ def _calculated(loaded: LoadedPlant, identity: str, slug: str, model: SystemMode
     except NotCalculatedError:
         effects = {}
     return SystemData(identity, slug, system, model, None, rated, model.assumptions, grid, effects)
+
+
+def _sheets(loaded: LoadedPlant) -> dict[str, TestSheet | str]:
+    from commission.acceptance import read_sheet
+
+    found: dict[str, TestSheet | str] = {}
+    for path in sorted((loaded.folder / "records" / "sheets").glob("*.yaml")):
+        try:
+            found[path.stem] = read_sheet(path)
+        except CommissionError as error:
+            found[path.stem] = error.problems[0].message
+    return found
 
 
 def _reason(error: CommissionError) -> str:

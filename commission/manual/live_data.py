@@ -79,14 +79,13 @@ def live_data(
     plant: PlantData, data: SystemData, plan: LivePlan, expected: Mapping[str, Any] | None
 ) -> dict[str, Any]:  # fmt: skip
     """All that the script needs, as plain data; `expected` is that of `expected_data`."""
-    from commission.records import records_folder
     from commission.records.read import READING_KEYS
 
     instruments = plant.loaded.plant.instruments
     judged = None if expected is None else {k for bands in expected["bands"] for k in bands}
     derived = [k for k in DERIVED if k not in plan.readings and (judged is None or k in judged)]
     keys = [*plan.conditions, *plan.readings, *DERIVED, "barometric_pressure"]
-    sheets = sorted(p.relative_to(records_folder(plant.loaded)).as_posix() for p in sheets_of(plant, data))
+    sheets = [f"sheets/{n}.yaml" for n, s in plant.sheets.items() if not isinstance(s, str) and s.system == data.id]
     return {
         "plant": plant.name,
         "system": data.id,
@@ -122,22 +121,6 @@ def as_script(data: Mapping[str, Any]) -> Markup:
     for sign in "<>&\u2028\u2029":
         text = text.replace(sign, f"\\u{ord(sign):04x}")
     return Markup(text)
-
-
-def sheets_of(plant: PlantData, data: SystemData) -> list[Any]:
-    """The files of the frozen test sheets of a system."""
-    from commission.acceptance import SheetError, read_sheet
-    from commission.records import records_folder
-
-    found = []
-    for path in sorted((records_folder(plant.loaded) / "sheets").glob("*.yaml")):
-        try:
-            sheet = read_sheet(path)
-        except SheetError:
-            continue  # the review names it; nobody can be judged by it
-        if sheet.system == data.id:
-            found.append(path)
-    return found
 
 
 def kind_data(display: Display, kind: Kind) -> dict[str, Any]:

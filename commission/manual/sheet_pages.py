@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import dataclass
 from itertools import product
 from typing import TYPE_CHECKING, Any
@@ -155,7 +154,7 @@ def sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: 
 def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
     """The frozen sheets of a system, and a draft from the description as it stands."""
     pages = []
-    frozen = frozen_sheets(plant, data)
+    frozen = {n: s for n, s in plant.sheets.items() if isinstance(s, str) or s.system == data.id}
     links = []
     for name, found in frozen.items():
         page = data.page(f"test-sheet-{slug(name)}")
@@ -189,20 +188,3 @@ def _draft(plant: PlantData, data: SystemData) -> TestSheet:
     assert data.grid is not None
     good = [p.temperature for p in data.grid.points if p.prediction is not None]
     return make_sheet(plant.loaded, data.model, {data.grid.key: good}, title=f"{data.name}: draft")
-
-
-def frozen_sheets(plant: PlantData, data: SystemData) -> Mapping[str, TestSheet | str]:
-    """The sheets below `records/sheets` that are of this system, by name; a text where one cannot be read."""
-    from commission.acceptance import read_sheet
-
-    folder = plant.loaded.folder / "records" / "sheets"
-    found: dict[str, TestSheet | str] = {}
-    for path in sorted(folder.glob("*.yaml")) if folder.is_dir() else ():
-        try:
-            sheet = read_sheet(path)
-        except CommissionError as error:
-            found[path.stem] = error.problems[0].message
-            continue
-        if sheet.system == data.id:
-            found[path.stem] = sheet
-    return found
