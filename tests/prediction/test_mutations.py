@@ -145,11 +145,11 @@ def _is_readable(error: CommissionError) -> None:
     assert not any(word in text for word in UNREADABLE), text
 
 
-def test_sixty_mutated_systems(folder: Path) -> None:
-    """Sixty seeded mutations that load: most are answered within the laws, the others refused in a sentence."""
-    answers, refusals = _try(folder, 60, "sixty slips of the pen", thorough=False)
-    assert answers > 20
-    assert refusals > 3
+def test_thirty_mutated_systems(folder: Path) -> None:
+    """Thirty seeded mutations that load: most are answered within the laws, the others refused in a sentence."""
+    answers, refusals = _try(folder, 30, "thirty slips of the pen", thorough=False)
+    assert answers > 12
+    assert refusals > 1
 
 
 @pytest.mark.long
