@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
-from types import MappingProxyType
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from commission.description import Assumption, LoadedPlant, System
@@ -61,7 +60,7 @@ class PlantData:
     loaded: LoadedPlant
     display: Display
     systems: tuple[SystemData, ...]
-    sheets: Mapping[str, TestSheet | str] = MappingProxyType({})
+    sheets: Mapping[str, TestSheet | str] = field(default_factory=dict)
 
     @property
     def name(self) -> str:
