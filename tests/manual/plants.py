@@ -89,6 +89,7 @@ def file_visits(folder: Path) -> None:
     sheet = file_sheet(loaded, make_sheet(loaded, model, ranges, title="Agreed test"), "agreed")
     item = 'open_items:\n  - {what: "insulate the suction line", who: contractor, due: 2026-05-10}\n'
     item += f"attachments: [{REPORT}]\n"
+    item += "answers: {trim.superheat: {answer: 6.1 K, remark: valve closed by half a turn}}\n"
     accepted = "sheet: sheets/agreed.yaml\nreservations: [the door gasket is replaced within four weeks]\n"
     assert sheet.name == "agreed.yaml"
     visits = [

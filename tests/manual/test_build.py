@@ -47,6 +47,16 @@ def test_evidence_in_markdown_is_copied_as_it_is(site: Path) -> None:
     assert not copied.with_suffix(".html").exists()
 
 
+def test_a_record_shows_what_was_answered(site: Path) -> None:
+    """The act as the checklist words it, the answer, and what was said beside it."""
+    (page,) = (site / "systems" / "cold-room").glob("record-2026-04-21-*.html")
+    text = page.read_text(encoding="utf-8")
+    assert "What was answered" in text
+    assert "Read the superheat at the evaporator outlet" in text
+    assert ">6.1 K<" in text
+    assert "valve closed by half a turn" in text
+
+
 def test_nothing_that_changes_by_date_is_written(site: Path) -> None:
     """No site map (it carries the day of the build), and no trace of the build folder in any page."""
     assert not list(site.glob("sitemap*"))
