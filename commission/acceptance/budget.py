@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
+from functools import cached_property
 
 from commission.acceptance.distributions import student_quantile
 
@@ -35,16 +36,20 @@ class Component:
 
     def scaled(self, factor: float) -> Component:
         """The contribution to a quantity that changes by `factor` per unit of this one."""
-        return replace(self, value=self.value * factor, sensitivity=self.sensitivity * factor)
+        return Component(
+            self.name, self.value * factor, self.distribution, self.dof, self.source, self.mark, self.cause, self.of,
+            self.sensitivity * factor, self.remedy, self.samples,
+        )  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Budget:
     """All components of the uncertainty of one value; `warnings` travel with it (an expired calibration, say)."""
 
     components: tuple[Component, ...] = ()
     warnings: tuple[str, ...] = ()
 
+    @cached_property
     def groups(self) -> tuple[tuple[Component, ...], ...]:
         """Components by cause, in the order of their first appearance."""
         table: dict[tuple[str, int], list[Component]] = {}
@@ -52,17 +57,17 @@ class Budget:
             table.setdefault((component.cause, -1) if component.cause else ("", number), []).append(component)
         return tuple(tuple(group) for group in table.values())
 
-    @property
+    @cached_property
     def standard(self) -> float:
         """Combined standard uncertainty (JCGM 100, 5.1.2; correlated parts 5.2.2 with coefficients of 1 or -1)."""
-        return math.hypot(*(sum(c.value for c in group) for group in self.groups())) if self.components else 0.0
+        return math.hypot(*(sum(c.value for c in group) for group in self.groups)) if self.components else 0.0
 
-    @property
+    @cached_property
     def dof(self) -> float:
         """Effective degrees of freedom (Welch-Satterthwaite, JCGM 100, equation G.2b), not rounded."""
         total = self.standard
         parts = 0.0
-        for group in self.groups():
+        for group in self.groups:
             dof = min(c.dof for c in group)
             if not math.isinf(dof) and total > 0.0:
                 parts += (sum(c.value for c in group) / total) ** 4 / dof
@@ -193,5 +198,5 @@ def repeated_means(columns: Sequence[Sequence[float]]) -> tuple[list[float], lis
 
 def largest_first(budget: Budget) -> Iterable[tuple[str, float]]:
     """Cause (or name) and size of each group of correlated components, the largest first."""
-    sums = [(group[0].cause or group[0].name, abs(sum(c.value for c in group))) for group in budget.groups()]
+    sums = [(group[0].cause or group[0].name, abs(sum(c.value for c in group))) for group in budget.groups]
     return sorted(sums, key=lambda item: -item[1])

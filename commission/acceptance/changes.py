@@ -58,7 +58,7 @@ def smallest_change(budget: Budget, largest_standard: float, confidence: float =
 
     if fits(budget):
         return None
-    movable = [group for group in budget.groups() if any(c.remedy for c in group)]
+    movable = [group for group in budget.groups if any(c.remedy for c in group)]
     movable.sort(key=lambda group: -abs(sum(c.value for c in group)))
     single = list(_single_changes(budget, movable, fits))
     if single:

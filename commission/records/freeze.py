@@ -163,7 +163,7 @@ def _split(budget: Budget) -> dict[str, Any]:
     shares: dict[str, float] = {}
     rest: list[float] = []
     least = 1e-3 * budget.standard
-    for group in budget.groups():
+    for group in budget.groups:
         total = math.fsum(c.value for c in group)
         cause = group[0].cause
         if cause.startswith(MODEL) and abs(total) >= least:
