@@ -87,7 +87,7 @@
       }
     });
     found.sort(function (a, b) {
-      return b.score - a.score;
+      return b.score - a.score || a.row.title.length - b.row.title.length; // the title nearest to the words
     });
     show(found);
     state.textContent = found.length === 0 ? "No page holds all of these words."

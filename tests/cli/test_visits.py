@@ -142,17 +142,33 @@ def test_record_needs_a_file_or_a_form(commission: Run, example_folder: Path) ->
     assert "performance" in misspelt.stderr
 
 
-def test_build_prints_the_first_page_and_keeps_the_last_good_manual(commission: Run, example_copy: Path) -> None:
+SMALL_PLANT = """\
+plant: {name: One room}
+systems:
+  room:
+    duty: cold_storage
+    refrigerant: R-290
+    charge: 0.45 kg
+    heat_source: {medium: air}
+    heat_sink: {medium: air}
+    rated_points:
+      - {heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 32 °C, cooling_capacity: 3.4 kW,
+         power_input: 1.6 kW, includes: [compressor, condenser fan]}
+"""
+
+
+def test_build_prints_the_first_page_and_keeps_the_last_good_manual(commission: Run, tmp_path: Path) -> None:
     """The first page is printed; a description that cannot be read leaves with 2 and the manual as it was."""
-    done = commission("build", example_copy, "--no-cache")
+    plant = tmp_path / "plant.yaml"
+    plant.write_text(SMALL_PLANT, encoding="utf-8")
+    done = commission("build", tmp_path, "--no-cache")
     assert done.returncode == 0, done.stderr
     first = Path(done.stdout.strip().splitlines()[-1])
     before = first.read_bytes()
-    plant = example_copy / "plant.yaml"
-    plant.write_text(plant.read_text(encoding="utf-8").replace("charge: 0.45 kg", "charge: 0.45"), encoding="utf-8")
-    broken = commission("build", example_copy, "--no-cache")
+    plant.write_text(SMALL_PLANT.replace("charge: 0.45 kg", "charge: 0.45"), encoding="utf-8")
+    broken = commission("build", tmp_path, "--no-cache")
     assert broken.returncode == 2
-    assert re.search(r"plant\.yaml:\d+:\d+: systems\.cold-room\.charge", broken.stderr)
+    assert re.search(r"plant\.yaml:\d+:\d+: systems\.room\.charge", broken.stderr)
     assert first.read_bytes() == before
 
 
