@@ -114,6 +114,7 @@ def _standing(data: SystemData, findings: tuple[Finding, ...], archive: Archive)
         visits=visits(archive, data.id),
         promised=bool(data.system.guarantee),
         open_items=sum(i.state == "open" and i.system == data.id for i in archive.items),
+        unanswered=archive.open_answers(data.id),
     )
 
 

@@ -55,6 +55,7 @@ def at_a_glance(
             "day_sheet": data.page("day-sheet"),
             "test": data.page("test-sheet"),
             "open": "open-items",
+            "records": data.page("records"),
         }
         standing = standings[data.id]
         step = next_step(standing, pages)

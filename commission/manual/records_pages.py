@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 from commission.manual.book import OwnerFile, Sheet, slugs
@@ -17,7 +17,7 @@ from commission.manual.states import Visit
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
-    from commission.records import FiledRecord, OpenItem, RecordsFolder, Series
+    from commission.records import FiledRecord, OpenItem, RecordsFolder, Series, Unanswered
 
 
 ITEMS = "open-items.csv"
@@ -26,17 +26,29 @@ ITEMS = "open-items.csv"
 
 @dataclass(frozen=True, slots=True)
 class Archive:
-    """The filed records of a plant with the page of each; `corrected` maps a record to the one that took its place."""
+    """The filed records of a plant with the page of each; `corrected` maps a record to the one that took its place.
+
+    `unanswered` holds, for each system with an accepted test, the items of its checklist that no record answers.
+    """
 
     folder: RecordsFolder
     items: tuple[OpenItem, ...]
     pages: Mapping[str, str]
     corrected: Mapping[str, str]
     files: tuple[OwnerFile, ...]
+    unanswered: Mapping[str, Unanswered]
 
     def of(self, system: str) -> tuple[FiledRecord, ...]:
         """The records of one system in the order of the visits."""
         return tuple(r for r in self.folder.records if r.system == system)
+
+    def accepted(self, record: FiledRecord) -> bool:
+        """Whether a record is an accepted test that no other one corrects."""
+        return record.file.mode == "test" and record.verdict == "conforming" and record.id not in self.corrected
+
+    def open_answers(self, system: str) -> int:
+        """How many items of the checklist no record answers although a test was accepted."""
+        return sum(len(items) for _, items in self.unanswered.get(system, ()))
 
 
 def read_archive(plant: PlantData) -> Archive:
@@ -60,7 +72,20 @@ def read_archive(plant: PlantData) -> Archive:
                 continue  # evidence too can run a program: its page names it with its digest, and the folder holds it
             if path.is_file() and folder.resolve() in path.resolve().parents:
                 files.append(OwnerFile(f"records/{attached.path}", path))
-    return Archive(found, open_items(plant.loaded), pages, corrected, tuple(files))
+    archive = Archive(found, open_items(plant.loaded), pages, corrected, tuple(files), {})
+    return replace(archive, unanswered=_unanswered(plant, archive))
+
+
+def _unanswered(plant: PlantData, archive: Archive) -> dict[str, Unanswered]:
+    """By system: what the checklist up to the stage of the last accepted test asked and nobody answered."""
+    from commission.records import unanswered
+
+    found = {}
+    for data in plant.systems:
+        tests = [r for r in archive.of(data.id) if archive.accepted(r)]
+        if tests:
+            found[data.id] = unanswered(plant.loaded, data.id, archive.folder.records, tests[-1].file.stage)
+    return found
 
 
 def title_of(record: FiledRecord) -> str:
@@ -116,6 +141,8 @@ def records_page(
         "charts": figures,
         "damaged": [str(p) for p in archive.folder.damaged],
         "drafts": archive.folder.drafts,
+        "unanswered": archive.unanswered.get(data.id, ()),
+        "unanswered_count": archive.open_answers(data.id),
         "day_sheet": data.page("day-sheet"),
         "checklist": data.page("checklist"),
         **_drift(plant, data, found),

@@ -25,11 +25,12 @@ class Visit:
 
 @dataclass(frozen=True, slots=True)
 class Step:
-    """One station on the way of a system: `done`, and its state in a few words."""
+    """One station on the way of a system: `done`, its state in a few words, and what it leaves undone."""
 
     stage: str
     state: str
     done: bool
+    left: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,7 +45,7 @@ class Next:
 
 @dataclass(frozen=True, slots=True)
 class Standing:
-    """What is known of a system's way so far."""
+    """What is known of a system's way so far; `unanswered` counts items of the checklist behind an accepted test."""
 
     because: str | None
     errors: int
@@ -52,6 +53,7 @@ class Standing:
     visits: tuple[Visit, ...]
     promised: bool
     open_items: int
+    unanswered: int = 0
 
     @property
     def tests(self) -> tuple[Visit, ...]:
@@ -98,14 +100,16 @@ def steps(s: Standing) -> tuple[Step, ...]:
         tested = Step("Tested", f"not yet; {plural(runs, 'visit')} filed" if runs else "not yet", False)
     if s.accepted:
         when = next(v.date for v in reversed(s.tests) if v.outcome == "conforming")
-        accepted = Step("Accepted", when, True)
+        left = f"{plural(s.unanswered, 'item')} of the checklist without an answer" if s.unanswered else None
+        accepted = Step("Accepted", when, True, left)
     else:
         accepted = Step("Accepted", "not yet" if s.promised else "nothing was promised", False)
     return described, reviewed, tested, accepted
 
 
 def next_step(s: Standing, pages: dict[str, str]) -> Next:
-    """What to do next with this system; `pages` gives page ids: what, findings, checklist, day_sheet, test, open."""
+    """What to do next with this system; `pages` gives page ids: what, findings, checklist, day_sheet, test, open,
+    records."""
     if s.because is not None:
         return Next(f"Complete the description: {s.because}.", "Until then nothing can be compared.", pages["what"],
                     "What it is")  # fmt: skip
@@ -146,6 +150,13 @@ def next_step(s: Standing, pages: dict[str, str]) -> Next:
         )
     if s.open_items:
         return Next(f"Close {plural(s.open_items, 'open item')}.", "", pages["open"], "Open items")
+    if s.unanswered:
+        return Next(
+            f"Answer {plural(s.unanswered, 'item')} of the checklist that no record answers.",
+            "What was promised is accepted; the checklist is still open.",
+            pages["records"],
+            "Records",
+        )
     return Next(
         "Compare the next visit with what is expected on that day.",
         "Nothing is outstanding.",

@@ -210,15 +210,11 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
         ],
         "corrected_page": archive.pages.get(corrected) if corrected else None,
         "corrects_page": archive.pages.get(record.file.corrects) if record.file.corrects else None,
-        "certificate": certificate_id(record, archive) if _accepted(record, archive) else None,
+        "certificate": certificate_id(record, archive) if archive.accepted(record) else None,
         "records_page": data.page("records"),
     }
     title = f"{title_of(record)}, {record.started.date().isoformat()}"
     return Sheet(archive.pages[record.id], title, data.group, "record.html", context, data.kicker, listed=False)
-
-
-def _accepted(record: FiledRecord, archive: Archive) -> bool:
-    return record.file.mode == "test" and record.verdict == "conforming" and record.id not in archive.corrected
 
 
 def certificate_id(record: FiledRecord, archive: Archive) -> str:
@@ -235,11 +231,12 @@ def certificates(plant: PlantData, data: SystemData, archive: Archive) -> tuple[
             data.group,
             "certificate.html",
             {**_shared(plant, data, r, archive), "plant_name": plant.name, "system_name": data.name,
-             "address": plant.loaded.plant.plant.address, "record_page": archive.pages[r.id]},
+             "address": plant.loaded.plant.plant.address, "record_page": archive.pages[r.id],
+             "records_page": data.page("records"), "unanswered": archive.open_answers(data.id)},
             kicker=data.kicker,
             short=f"Certificate {r.started.date().isoformat()}",
             paper=True,
         )
         for r in archive.of(data.id)
-        if _accepted(r, archive)
+        if archive.accepted(r)
     )  # fmt: skip

@@ -24,6 +24,7 @@ from commission.records.recomputation import Recomputation, recompute
 from commission.records.record import CheckedAnswer, Record, SiteReading
 from commission.records.sums import FileFinding, SumsError
 from commission.records.text import is_filed
+from commission.records.unanswered import Unanswered, unanswered
 
 __all__ = [
     "CheckedAnswer",
@@ -45,6 +46,7 @@ __all__ = [
     "Series",
     "SiteReading",
     "SumsError",
+    "Unanswered",
     "baseline_of",
     "check_files",
     "damaged",
@@ -69,5 +71,6 @@ __all__ = [
     "record_form",
     "records_folder",
     "series",
+    "unanswered",
     "versions",
 ]

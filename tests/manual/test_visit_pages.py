@@ -95,6 +95,29 @@ def test_a_certificate_keeps_its_reservation_and_says_when_it_was_closed(
     assert "Closed since, 2026-06-02 by the warden." in again
 
 
+def test_a_certificate_says_how_much_of_the_checklist_has_no_answer(folder: Path, pages: Pages, tmp_path: Path) -> None:
+    """An accepted guarantee says nothing of strength and evacuation: the certificate counts what no record answers, by
+    stages up to that of the test, and an answer in a later record takes an item off."""
+    archive, texts = pages(folder)
+    left = archive.open_answers(SYSTEM)
+    asked = dict(archive.unanswered[SYSTEM])
+    assert {"Strength and tightness", "Evacuation"} <= set(asked)
+    assert not {"Handover", "Upkeep visits"} & set(asked)
+    assert f"the checklist is open. When this page was made, {left} items of it had no answer" in _one(
+        texts, "certificate"
+    )
+    item = asked["Evacuation"][0][0]
+    _file(
+        folder,
+        tmp_path,
+        LATER.format(mode="trim", day="2026-07-14")
+        + f"answers: {{{item}: {{answer: not applicable, reason: evacuated in the factory}}}}\n",
+    )
+    archive, texts = pages(folder)
+    assert archive.open_answers(SYSTEM) == left - 1
+    assert f"{left - 1} items of it had no answer" in _one(texts, "certificate")
+
+
 def test_a_later_visit_still_stands_under_the_reservation(folder: Path, pages: Pages, tmp_path: Path) -> None:
     """The page of a retest says which reservations of an earlier test stand."""
     path = _file(folder, tmp_path, LATER.format(mode="test", day="2026-07-14"))
