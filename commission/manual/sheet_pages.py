@@ -153,7 +153,10 @@ def sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: 
 
 def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
     """The frozen sheets of a system, and a draft from the description as it stands."""
+    from commission.records import digest_of_file
+
     pages = []
+    folder = plant.loaded.folder / "records" / "sheets"
     frozen = {n: s for n, s in plant.sheets.items() if isinstance(s, str) or s.system == data.id}
     links = []
     for name, found in frozen.items():
@@ -162,7 +165,10 @@ def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
             links.append({"name": name, "page": None, "because": found})
             continue
         links.append({"name": name, "page": page, "because": None})
-        context = sheet_context(plant, data, found, name) | {"sheets": []}
+        context = sheet_context(plant, data, found, name) | {
+            "sheets": [],
+            "file_digest": digest_of_file(folder / f"{name}.yaml"),
+        }
         title = found.title or f"Test sheet {name}"
         pages.append(Sheet(page, title, data.group, "test_sheet.html", context, data.kicker, listed=False, paper=True))
     context = {

@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from pathlib import PurePosixPath
 from typing import TYPE_CHECKING, Any
 
+from commission.errors import CommissionError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.page_display import PageDisplay
@@ -59,6 +59,15 @@ def _limits(display: Display, kind: Kind, low: float | None, high: float | None)
     return " and ".join(parts)
 
 
+def _share_sure(probability: float | None) -> str:
+    """A probability in per cent; nothing measured is certain, so none is printed as 100.0 or 0.0."""
+    if probability is None:
+        return ""
+    if probability > 0.999:
+        return "more than 99.9 %"
+    return "less than 0.1 %" if probability < 0.001 else f"{100.0 * probability:.1f} %"
+
+
 def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
     kind = NOMENCLATURE[g.quantity].kind
     shares = [
@@ -79,7 +88,7 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
          if g.expanded is not None else ""),
         ("Decision rule", f"{g.rule} acceptance"),
         ("Accepted where", _limits(display, kind, g.acceptance_low, g.acceptance_high)),
-        ("Probability of conformity", display.text(g.probability, Kind.RATIO, 1) if g.probability is not None else ""),
+        ("Probability of conformity", _share_sure(g.probability)),
         ("Target frozen before the test", "yes" if g.frozen_before else "no"),
         ("Clause", g.source or ""),
         ("No verdict because", g.withheld or ""),
@@ -106,17 +115,20 @@ def _closure(display: Display, c: FrozenClosure) -> dict[str, Any]:
     return {"text": text, "agree": not c.significant}
 
 
-def _sheet_page(plant: PlantData, data: SystemData, record: FiledRecord) -> str | None:
-    """The page of the frozen sheet that a record was judged by, None where the sheet is gone or was changed."""
+def _judged_sheet(plant: PlantData, data: SystemData, record: FiledRecord) -> dict[str, str | None]:
+    """Page and digest line of the frozen sheet that a record was judged by; None where it cannot be read as it was."""
+    from commission.acceptance import read_sheet
     from commission.records import digest_of_file
 
     judged = record.filed.judged_by
-    if judged.sheet is None:
-        return None
-    path = plant.loaded.folder / "records" / judged.sheet
-    if not path.is_file() or digest_of_file(path) != judged.sha256:
-        return None
-    return data.page(f"test-sheet-{slug(PurePosixPath(judged.sheet).stem)}")
+    path = plant.loaded.folder / "records" / judged.sheet if judged.sheet else None
+    if path is None or not path.is_file() or digest_of_file(path) != judged.sha256:
+        return {"sheet_page": None, "sheet_digest": None}
+    try:
+        digest = read_sheet(path).digest
+    except CommissionError:
+        return {"sheet_page": None, "sheet_digest": None}
+    return {"sheet_page": data.page(f"test-sheet-{slug(path.stem)}"), "sheet_digest": digest}
 
 
 def _standing(record: FiledRecord, archive: Archive) -> list[dict[str, Any]]:
@@ -164,7 +176,7 @@ def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Ar
         ],
         "items": [i for i in archive.items if i.found_in == record.id],
         "closures": [_closure(display, c) for c in filed.closures],
-        "sheet_page": _sheet_page(plant, data, record),
+        **_judged_sheet(plant, data, record),
         "standing": _standing(record, archive),
     }
 

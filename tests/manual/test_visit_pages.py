@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import hashlib
 import re
 import shutil
 from collections.abc import Callable
@@ -16,7 +17,7 @@ from commission.manual.gather import gather_one
 from commission.manual.records_pages import Archive, read_archive
 from commission.manual.rendering import environment, render_body
 from commission.manual.single import LoneBook
-from commission.manual.visit_pages import certificates, record_page
+from commission.manual.visit_pages import _share_sure, certificates, record_page
 from commission.manual.where import templates_folder
 from commission.records import file_record, recompute
 from commission.records.filed import FrozenClosure
@@ -116,6 +117,26 @@ def test_a_certificate_says_how_much_of_the_checklist_has_no_answer(folder: Path
     archive, texts = pages(folder)
     assert archive.open_answers(SYSTEM) == left - 1
     assert f"{left - 1} items of it had no answer" in _one(texts, "certificate")
+
+
+def test_a_certificate_names_both_digests_of_its_sheet_apart(folder: Path, pages: Pages) -> None:
+    """The first line of a sheet and the SHA-256 of its file are two numbers: both stand on the certificate, named."""
+    _, texts = pages(folder)
+    sheet = folder / "records" / "sheets" / "agreed.yaml"
+    line = sheet.read_text(encoding="utf-8").splitlines()[0].removeprefix("digest: ")
+    of_file = hashlib.sha256(sheet.read_bytes()).hexdigest()
+    certificate = _one(texts, "certificate")
+    assert f"Digest line of the test sheet {line}" in certificate
+    assert f"File of the test sheet (SHA-256) {of_file}" in certificate
+
+
+@pytest.mark.parametrize(
+    ("probability", "printed"),
+    [(1.0, "more than 99.9 %"), (0.9995, "more than 99.9 %"), (0.9731, "97.3 %"), (0.0002, "less than 0.1 %")],
+)
+def test_no_probability_is_printed_as_certain(probability: float, printed: str) -> None:
+    """A measurement never makes conformity certain."""
+    assert _share_sure(probability) == printed
 
 
 def test_a_later_visit_still_stands_under_the_reservation(folder: Path, pages: Pages, tmp_path: Path) -> None:
