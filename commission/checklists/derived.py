@@ -6,7 +6,7 @@ from collections.abc import Callable, Mapping
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
-from commission.safety import rated_capacity, relief_valves
+from commission.safety import charge_limits, rated_capacity, relief_valves
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
@@ -28,6 +28,15 @@ def _freezer(facts: Facts) -> bool | None:
     if room is None and system.design is not None:
         room = system.design.heat_source_inlet_temperature
     return None if room is None else room < 273.15
+
+
+def _light_charge(facts: Facts) -> bool:
+    """A charge of class 2L that no document limits further in the space of the evaporator: what sparks in the rest of
+    the room is no part of the installation (EN 378-1:2016 annex C; IEC 60335-2-40)."""
+    if facts.substance.flammability != "2L":
+        return False
+    limits = charge_limits(facts.loaded, facts.system_id, facts.substance)
+    return any(space.space_id == facts.space_id("evaporator") and space.over is False for space in limits)
 
 
 def _outdoors(facts: Facts) -> bool:
@@ -104,7 +113,8 @@ def _known(name: str) -> Callable[[Facts, str], float | None]:
 
 
 def _curve(which: str, key: str) -> Callable[[Facts, str], float | None]:
-    """A point of the weather curve; one in the middle only where the curve has three points or more."""
+    """A point of the weather curve; one in the middle only where the curve has three points or more; the mildest where
+    the machine still heats."""
 
     def find(facts: Facts, _: str) -> float | None:
         curve = facts.system.controls.weather_curve
@@ -113,10 +123,26 @@ def _curve(which: str, key: str) -> Callable[[Facts, str], float | None]:
         points: list[CurvePoint] = sorted(curve.points, key=lambda point: point.outdoor)
         if which == "middle" and len(points) < 3:
             return None
-        point = {"coldest": points[0], "middle": points[len(points) // 2], "mildest": points[-1]}[which]
+        if which == "mildest":
+            return _mildest(points, curve.heating_limit)[key]
+        point = {"coldest": points[0], "middle": points[len(points) // 2]}[which]
         return float(getattr(point, key))
 
     return find
+
+
+BELOW_LIMIT = 1.0
+"""K below the heating limit at which a controller is sure to heat (common practice)."""
+
+
+def _mildest(points: list[CurvePoint], limit: float | None) -> dict[str, float]:
+    """The last point of a curve, or where the straight line before it stands 1 K below the heating limit, K."""
+    before, last = points[-2], points[-1]
+    outdoor = last.outdoor
+    if limit is not None and before.outdoor < limit - BELOW_LIMIT < outdoor:
+        outdoor = limit - BELOW_LIMIT
+    share = (outdoor - before.outdoor) / (last.outdoor - before.outdoor)
+    return {"outdoor": outdoor, "flow": before.flow + share * (last.flow - before.flow)}
 
 
 DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
@@ -141,6 +167,7 @@ DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "law.building_inspection": lambda f, _: _building(f),
         "room.walk_in": lambda f, _: f.system.duty == "cold_storage" and not f.system.sealed,
         "room.freezer": lambda f, _: _freezer(f),
+        "room.light_charge": lambda f, _: _light_charge(f),
         "source.liquid": lambda f, _: f.system.heat_source.medium != "air",
         "sink.liquid": lambda f, _: f.system.heat_sink.medium != "air",
         "source.antifreeze": lambda f, _: _antifreeze(f.system.heat_source),

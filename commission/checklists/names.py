@@ -18,8 +18,8 @@ from commission.safety import FIGURE_TITLES
 READINGS: Mapping[str, str] = MappingProxyType(
     {
         "expected": "expected reading at the condition of the list (rated, or the one asked for)",
-        "hottest": "expected reading on the hottest design day, rest as rated",
-        "coldest": "expected reading on the coldest design day, rest as rated",
+        "hottest": "expected reading on the hottest day of the system's season, rest as rated",
+        "coldest": "expected reading on the coldest day of the system's season, rest as rated",
         "condition": "condition of the list",
     }
 )
@@ -50,6 +50,11 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         ),
         "room.walk_in": ("yes/no", "people walk into the cooled room", ()),
         "room.freezer": ("yes/no", "the cooled room is held below 0 °C", ()),
+        "room.light_charge": (
+            "yes/no",
+            "the refrigerant burns slowly and its charge is below the lowest limit of the evaporator's space",
+            (),
+        ),
         "source.liquid": ("yes/no", "heat is taken from a liquid", ()),
         "sink.liquid": ("yes/no", "heat is given to a liquid", ()),
         "source.antifreeze": ("yes/no", "the liquid that heat is taken from holds glycol", ()),
@@ -91,7 +96,10 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.owner": ("text", "the owner and how to reach them", ()),
         "words.contractor": ("text", "the contractor and how to reach them", ()),
         "words.other_season": ("text", "how far another season's condition lies from the test", ()),
-        "words.design_days": ("text", "expected discharge on the hottest and coldest design days", ()),
+        "words.design_days": ("text", "expected discharge on the hottest and coldest day of the season", ()),
+        "words.acts_first": ("text", "what may stop the machine before the high-pressure limit device", ()),
+        "words.strength_gauge": ("text", "gauge of the plant for the strength test of the whole circuit", ()),
+        "words.strength_gauge_high_side": ("text", "gauge of the plant for the strength test of the high side", ()),
         "words.flow_stages": ("text", "air flow of each stage of the fan", ()),
         "words.levels": ("text", "levels in the air that matter to people", ()),
         "words.highest_discharge": ("text", "highest discharge temperature by common practice", ()),

@@ -7,7 +7,7 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
 from commission.errors import CommissionError
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import NOMENCLATURE, Kind, Reference
 from commission.safety import (
     charge_limits,
     fluid_of,
@@ -33,9 +33,11 @@ def _other_season(facts: Facts) -> str:
 
     if not outdoor_conditions(facts.loaded, facts.system_id):
         return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
-    if facts.system.duty == "comfort_cooling":
-        return "in the cooling season at least 8 K warmer or cooler outdoors than the test"
-    return "at least 15 K colder or warmer outdoors than the test"
+    days = facts.design_days
+    ends = [facts.display.text(days[word], Kind.TEMPERATURE) for word in ("coldest", "hottest") if word in days]
+    if not ends:
+        return "as much colder or warmer outdoors than the test as the site offers"
+    return f"at least half of the way from the test's outdoor air to {' or '.join(ends)}"
 
 
 def _design_days(facts: Facts) -> str | None:
@@ -48,6 +50,49 @@ def _design_days(facts: Facts) -> str | None:
             shown = facts.display.text(prediction.expected[key].value, NOMENCLATURE[key].kind)
             texts.append(f"{shown} at {facts.display.text(outdoors, Kind.TEMPERATURE)} outdoors")
     return ", ".join(texts) or None
+
+
+def _acts_first(facts: Facts) -> str | None:
+    """What may stop the machine before the high-pressure limit device, when its cooling is taken off."""
+    system, display = facts.system, facts.display
+    hot, least = system.controls.discharge_temperature_limit, system.heat_sink.least_flow
+    found = []
+    if hot is not None:
+        found.append(f"the discharge limiter at {display.text(hot, Kind.TEMPERATURE)}")
+    if least is not None and system.heat_sink.medium != "air":
+        found.append(f"the flow switch at {display.text(least, Kind.VOLUME_FLOW)}")
+    return " or ".join(found) or None
+
+
+GAUGE_REACH = 1.25
+"""A test gauge reads to at least this many times the test pressure (common practice, no source)."""
+
+
+def _strength_gauge(figure: str) -> Callable[[Facts, str], str | None]:
+    """Which gauge of the plant is good for a test pressure: the one with the smallest scale that reaches far enough."""
+
+    def find(facts: Facts, _: str) -> str | None:
+        pressure = facts.figures.get(figure)
+        if pressure is None:
+            return None
+        needed = (pressure.value - facts.loaded.barometric_pressure) * GAUGE_REACH
+        scales = []
+        for key, instrument in facts.loaded.plant.instruments.items():
+            scale = instrument.resolved
+            if instrument.measures != "pressure" or scale.range_high is None:
+                continue
+            gauge = scale.reference is Reference.GAUGE
+            reach = scale.range_high - (0.0 if gauge else facts.loaded.barometric_pressure)
+            if reach >= needed:
+                scales.append((reach, f"{key} ({instrument.serial or 'no serial stated'})"))
+        if scales:
+            return f"Of this plant's gauges take {min(scales)[1]}; shut off every one that ends lower."
+        wanted = facts.display.text(needed + facts.loaded.barometric_pressure, Kind.PRESSURE, 0)
+        return (
+            f"No gauge of this plant reaches far enough: bring one that reads to {wanted} or more, and shut off theirs."
+        )
+
+    return find
 
 
 def _flow_stages(facts: Facts) -> str | None:
@@ -153,7 +198,7 @@ def _charge_limits(facts: Facts) -> str:
         if space.lowest is not None and space.lowest.value is not None:
             shown = facts.display.text(space.lowest.value.value, Kind.MASS)
             texts.append(f"{space.name} {shown} by {space.lowest.document}, {space.lowest.edition}")
-    return "; ".join(texts) or "none by room size (see the page on charge)"
+    return "; ".join(texts) or "none by room size (see 'Charge and rooms' on the page 'Safety figures')"
 
 
 def _person(role: str) -> Callable[[Facts, str], str | None]:
@@ -240,6 +285,9 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.contractor": _person("contractor"),
         "words.other_season": lambda f, _: _other_season(f),
         "words.design_days": lambda f, _: _design_days(f),
+        "words.acts_first": lambda f, _: _acts_first(f),
+        "words.strength_gauge": _strength_gauge("strength_test_pressure"),
+        "words.strength_gauge_high_side": _strength_gauge("strength_test_pressure_high_side"),
         "words.flow_stages": lambda f, _: _flow_stages(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),

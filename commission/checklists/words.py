@@ -111,10 +111,20 @@ def predictions(
 
 
 def design_days(loaded: LoadedPlant, system_id: str) -> dict[str, float]:
-    """Outdoor air of the hottest and the coldest design day in K, where the plant says it."""
-    hottest = hottest_ambient(loaded, system_id)
-    found = {"hottest": None if hottest is None else hottest[0], "coldest": loaded.plant.plant.climate.winter_dry_bulb}
+    """Outdoor air of the hottest and the coldest day on which the system works in K, where the plant says it."""
+    system, hottest = loaded.system(system_id), hottest_ambient(loaded, system_id)
+    curve = system.controls.weather_curve
+    warm, cold = None if hottest is None else hottest[0], loaded.plant.plant.climate.winter_dry_bulb
+    if system.duty == "space_heating":
+        warm = None if curve is None else curve.heating_limit
+    if system.duty == "comfort_cooling" and cold is not None:
+        cold = max(cold, COOL_DAY)
+    found = {"hottest": warm, "coldest": cold}
     return {word: temperature for word, temperature in found.items() if temperature is not None}
+
+
+COOL_DAY = 291.15
+"""A cool day of the cooling season, 18 °C: below it windows cool a building (common practice, no source)."""
 
 
 def outdoor_conditions(loaded: LoadedPlant, system_id: str) -> tuple[str, ...]:

@@ -255,7 +255,7 @@ def test_the_weather_curve_is_tried_at_three_points(tmp_path: Path, plant: Loade
     found = fitted(plant, "floor-heating")
     assert says(found["controls.curve"]).startswith("38.0 °C")
     assert says(found["controls.curve-middle"]).startswith("34.0 °C")
-    assert "15.0 °C outdoors" in found["controls.curve-mild"].do
+    assert "14.0 °C outdoors" in found["controls.curve-mild"].do
     assert "controls.curve-middle" not in listed(tmp_path, "heat-pump")
 
 
