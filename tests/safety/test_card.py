@@ -162,3 +162,13 @@ def test_a_wrong_word_in_the_own_card_is_an_error_with_its_line(plant: Plants, l
     assert (problem.file, problem.line) == ("emergency_card.yaml", 5)
     assert words in problem.message
     assert problem.allowed
+
+
+def test_what_lights_the_gas_fits_its_class(plant: Plants) -> None:
+    """A2L needs a flame or a strong spark (EN 378-1: burning velocity below 0.1 m/s); A3 is lit by a small one."""
+    mild, strong = text(card(plant(refrigerant="R-32"))), text(card(plant()))
+    assert "a flame or a strong spark" in mild
+    assert "small spark" not in mild
+    assert "small spark" in strong
+    assert "It can burn from 2." in strong
+    assert "in the air. At a quarter" in strong
