@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -10,6 +10,7 @@ from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.errors import nearest as nearest_word
 from commission.records.disk import digest_of_file
+from commission.records.held import held
 from commission.records.read import RecordError, records_folder
 from commission.records.readings import UNBALANCE_OF
 from commission.records.record import Record, SiteReading
@@ -52,7 +53,8 @@ def judged_by(
 ) -> Judgement:
     """The judgement by this sheet, or by the description as it stands where there is none.
 
-    An unbalance that was worked out from phases is left to acceptance, which has the phases too.
+    An unbalance that was worked out from phases is left to acceptance, which has the phases too. A reading of which
+    nothing is expected says what the checklist holds it to.
 
     Raises:
         NotCalculatedError: the system cannot be calculated.
@@ -60,7 +62,7 @@ def judged_by(
     from commission.acceptance.judgement import judge
     from commission.prediction import fit
 
-    return judge(
+    judgement = judge(
         loaded,
         fit(loaded, record.system) if model is None else model,
         [site_reading(r) for r in record.conditions.values()],
@@ -73,6 +75,8 @@ def judged_by(
         upsets=record.file.upsets,
         cycles=cycles_of(record),
     )
+    asked = {k: h.text for k, h in held(loaded, record.system, record.readings.values()).items()}
+    return replace(judgement, not_judged={k: asked.get(k, why) for k, why in judgement.not_judged.items()})
 
 
 def cycles_of(record: Record) -> WholeCycles | None:

@@ -14,6 +14,7 @@ from commission.errors import nearest as nearest_word
 from commission.quantities import NOMENCLATURE
 from commission.records.answers import check_answers
 from commission.records.disk import digest_of
+from commission.records.held import contradicted
 from commission.records.model import RecordFile
 from commission.records.readings import BAROMETER, CONDITION_KEYS, ReadingsReader
 from commission.records.record import Record
@@ -93,12 +94,13 @@ def check_record(
         check_answers(reader, file.answers, file.stage, items, _files(file), read) if items else ({}, ())
     )
     _sense(file, reader)
+    against = contradicted(loaded, file.system, answers, read) if items else []
     if reader.problems:
         raise RecordError(*bounded(reader.problems))
     text = content.decode("utf-8-sig")
     return Record(
         path, file, text, digest_of(content), data, positions, barometer, measured,
-        conditions, readings, answers, unanswered, tuple(_warnings(file, readings, unanswered)),
+        conditions, readings, answers, unanswered, (*_warnings(file, readings, unanswered, items), *against),
     )  # fmt: skip
 
 
@@ -174,12 +176,15 @@ def _sense(file: RecordFile, reader: ReadingsReader) -> None:
         )
 
 
-def _warnings(file: RecordFile, readings: Mapping[str, Any], unanswered: tuple[str, ...]) -> list[str]:
+def _warnings(
+    file: RecordFile, readings: Mapping[str, Any], unanswered: tuple[str, ...], items: Mapping[str, Sequence[Item]]
+) -> list[str]:
     """What is not wrong but weakens the record, as sentences."""
     found = []
     if file.mode == "test" and unanswered:
         noun = "item of this stage has" if len(unanswered) == 1 else "items of this stage have"
-        found.append(f"{len(unanswered)} {noun} no answer: {', '.join(unanswered)}")
+        acts = " ".join(i.do for i in items.get(file.stage, ()) if i.id in unanswered)
+        found.append(f"{len(unanswered)} {noun} no answer: {acts.rstrip('.')}")
     if readings and file.since_start is None and file.cycles is None:
         found.append("the running time since the last start is not written: nobody can say later that it was steady")
     return found
