@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
+from commission.manual.heating_up import HeatingUps, heating_ups
 from commission.manual.page_display import PageDisplay
 from commission.manual.records_pages import VERDICT_CLASS, Archive, signed, title_of, when
 from commission.manual.showing import label_of, unit_of
@@ -16,7 +17,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from commission.records import FiledRecord
-    from commission.records.filed import FrozenClosure, FrozenDeviation, FrozenGuarantee, FrozenReading
+    from commission.records.filed import FiledBlock, FrozenClosure, FrozenDeviation, FrozenGuarantee, FrozenReading
     from commission.records.model import Answer, Measured
 
 
@@ -201,6 +202,33 @@ def _answer(act: str, answer: Answer) -> tuple[str, str, str]:
     return act, answer.answer, "; ".join(text for text in (answer.reason, answer.remark, answer.by) if text)
 
 
+_HEAT_UP = ("heat_up_time", "heat_up_energy")
+
+
+def _heat_up(found: HeatingUps | None, key: str) -> str | None:
+    """What a heat-up should take by the description of today: a record does not hold where it started from."""
+    for way in found.ways if found else ():
+        row = next((r for r in way.rows if r.key.startswith(key)), None)
+        if row is not None and row.value is not None:
+            title = way.title[:1].lower() + way.title[1:]
+            band = f", {row.band}" if row.band else ""
+            return f"not compared, since no start temperatures are recorded; {title}: {row.value} {row.unit}{band}"
+    return None
+
+
+def _not_judged(plant: PlantData, data: SystemData, filed: FiledBlock) -> dict[str, Any]:
+    """Readings without an expected value and why; of a heat-up, what the rated day would give."""
+    heated = any(k in _HEAT_UP for k in filed.not_judged)
+    found = heating_ups(plant, data) if heated else None
+    return {
+        "not_judged": [
+            (label_of(k), (_heat_up(found, k) if k in _HEAT_UP else None) or why) for k, why in filed.not_judged.items()
+        ],
+        "heated": found.words if found else None,
+        "running_page": data.page("how-it-should-run"),
+    }
+
+
 def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
     """One visit as it was filed."""
     display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
@@ -215,7 +243,7 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
         "deviations": judged,
         "alone": alone,
         "answers": _answers(plant, data, record),
-        "not_judged": [(label_of(k), why) for k, why in filed.not_judged.items()],
+        **_not_judged(plant, data, filed),
         "routes": [
             (r.route, label_of(r.quantity), None if r.value is None else display.of(r.quantity, r.value), r.refused)
             for r in filed.routes

@@ -11,7 +11,9 @@ from commission.description import load_plant
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.heating_up import heating_ups
 from commission.manual.page_display import PageDisplay
+from commission.manual.visit_pages import _not_judged
 from commission.prediction import heat_up
+from commission.records import FiledBlock
 
 
 @pytest.fixture(scope="module")
@@ -67,3 +69,14 @@ def test_what_is_not_stated_is_named(water: tuple[PlantData, SystemData]) -> Non
     assert found is not None
     assert "store.cold_water" in str(found.because)
     assert heating_ups(plant, replace(data, system=data.system.model_copy(update={"store": None}))) is None
+
+
+def test_a_record_shows_what_the_rated_day_would_take(water: tuple[PlantData, SystemData]) -> None:
+    """A record of a heat-up holds no start temperatures: the page gives the figure of the rated day beside it."""
+    filed = FiledBlock.model_construct(not_judged={"heat_up_time": "nothing", "voltage": "within"})
+    found = _not_judged(*water, filed)
+    heat, voltage = found["not_judged"]
+    row = heating_ups(*water).ways[0].rows[0]  # type: ignore[union-attr]  # the system has a store
+    assert f"as rated: {row.value} h, {row.band}" in heat[1]
+    assert voltage == ("Voltage", "within")
+    assert "from 10.0 °C to 60.0 °C" in found["heated"]
