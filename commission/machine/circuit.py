@@ -222,7 +222,7 @@ class Circuit(ABC):
     def low_guess(self) -> tuple[float, ...]:
         """The unknowns of the low side to start from: one for a difference between medium and refrigerant, and the
         inlet (K) of a medium that is known by its outlet."""
-        source, first = self.media.source, max(8.0, 1.2 * self.machine.superheat)
+        source, first = self.media.source, max(9.0, 1.2 * self.machine.superheat)
         return (first, source.temperature + 4.0) if source.by_outlet else (first,)
 
     def entering(self, low: Sequence[float]) -> float:

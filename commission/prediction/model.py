@@ -276,7 +276,7 @@ class SystemModel:
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
         for cause, change, _ in self._changes(whole, filled, nominal, point, starts):
             for key, amount in change.items():
-                if amount != 0.0:
+                if abs(amount) > ROUNDING * abs(nominal.values[key]):
                     _add_part(parts[key], cause, amount)
         self._own_parts(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
@@ -312,6 +312,10 @@ class SystemModel:
             for key in ("cooling_cop", "heating_cop", "heating_cop_with_defrosts"):
                 if key in nominal.values:
                     _add_part(parts[key], SCATTER, math.sqrt(2) * self.fit.scatter * nominal.values[key])
+
+
+ROUNDING = 1e-9
+"""Relative change of a value below which a cause does not move it: solver and properties agree to that."""
 
 
 def _add_part(parts: dict[str, float], cause: str, amount: float) -> None:
