@@ -175,6 +175,7 @@ def test_sheets(plant: PlantData, data: SystemData) -> tuple[Sheet, ...]:
         "because": data.because or "the weather range of this system is not known",
         "sheets": links,
         "frozen": None,
+        "file_digest": None,
     }
     if data.model is not None and data.grid is not None:
         try:
