@@ -64,6 +64,9 @@ _LABELS = {
 }
 """Labels that are not simply the key in words."""
 
+_TWO_DAYS = 172800.0
+_PIPE = 0.5
+"""Below this length in m a person thinks in millimetres or inches: the size of a pipe, the gap of fins."""
 _ELSEWHERE = {"like", "without", "name", "rated_points", "guarantee", "documents", "assumptions", "measured_with",
               "design"}  # fmt: skip
 """Keys of a system that other parts of the manual show."""
@@ -92,6 +95,10 @@ def stated_number(display: Display, value: float, kind: Kind) -> str:
 
     A flow that comes back from the calculation a hair off (2601 for a stated 2600) gets its three figures.
     """
+    if kind is Kind.DURATION and value >= _TWO_DAYS and value % 86400.0 == 0.0:
+        return f"{value / 86400.0:g} days"
+    if kind is Kind.LENGTH and 0.0 < abs(value) < _PIPE:
+        return f"{value / 0.0254:.3g} in" if display.system == "us_customary" else f"{1000.0 * value:.3g} mm"
     if kind is Kind.DURATION and value >= 7200.0 and value % 3600.0 == 0.0:
         return f"{value / 3600.0:g} h"
     shown = display.convert(value, kind)

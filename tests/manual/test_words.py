@@ -71,6 +71,10 @@ def test_stated_values_are_shown_as_stated() -> None:
     assert stated_number(METRIC, 2100 / 3600, Kind.VOLUME_FLOW) == "2100 m³/h"
     assert stated_number(METRIC, 6 * 3600, Kind.DURATION) == "6 h"
     assert stated_number(METRIC, 0.005, Kind.RATIO) == "0.5 %"
+    assert stated_number(METRIC, 7 * 86400, Kind.DURATION) == "7 days"
+    assert stated_number(METRIC, 0.0159, Kind.LENGTH) == "15.9 mm"
+    assert stated_number(Display("us_customary", 101325.0), 0.015875, Kind.LENGTH) == "0.625 in"
+    assert stated_number(METRIC, 12.0, Kind.LENGTH) == "12.00 m"
 
 
 def test_groups_keep_what_they_do_not_know() -> None:
