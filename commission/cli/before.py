@@ -59,7 +59,7 @@ def columns_of(loaded: LoadedPlant, model: SystemModel, forecast: Mapping[str, f
     Raises:
         InputError: no condition of this system follows the weather, or the forecast lies outside its range.
     """
-    from commission.manual.grid import outdoor_axis
+    from commission.manual.grid import highest_asked, outdoor_axis
 
     key, _ = outdoor_axis(loaded, loaded.system(model.system_id))
     if key not in model.condition_axes:
@@ -70,7 +70,9 @@ def columns_of(loaded: LoadedPlant, model: SystemModel, forecast: Mapping[str, f
     first = math.floor(round((middle - AROUND) / AROUND, 6))
     last = math.ceil(round((middle + AROUND) / AROUND, 6))
     found = [n * AROUND + _ZERO_C for n in range(first, last + 1)]
-    inside = tuple(t for t in found if axis.low - 1e-6 <= t <= axis.high + 1e-6)
+    limit = highest_asked(model, key)
+    high = limit if forecast.get(key, axis.rated) <= limit else axis.high  # made to run above its heating limit
+    inside = tuple(t for t in found if axis.low - 1e-6 <= t <= high + 1e-6)
     if not inside:
         message = "the forecast lies outside the range that this system is calculated for"
         raise InputError(Problem(message, path=f"--at {key}", allowed="say the range with --over"))

@@ -2,41 +2,26 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
-from commission.manual.showing import label_of, size_text, unit_of
-from commission.manual.system_pages import Cell, grid_cell, grid_conditions
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.manual.live_plan import readings_of
+from commission.manual.showing import label_of, less_than_zero, size_text, unit_of
+from commission.manual.system_pages import Cell, cell, grid_cell, grid_conditions
+from commission.manual.worked_out import EVAPORATOR_OUTLET, WORKED_OUT, evaporator_outlet, how
+from commission.quantities import NOMENCLATURE, Kind
 
-READ = (
-    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
-    "heat_source_outlet_temperature", "heat_sink_outlet_temperature", "power_input", "current",
-)  # fmt: skip
-"""What is read directly."""
+if TYPE_CHECKING:
+    from commission.prediction import Prediction
 
-WORKED_OUT = (
-    "evaporator_temperature_difference", "superheat", "compressor_superheat", "condenser_temperature_difference",
-    "subcooling", "heat_source_temperature_change", "heat_sink_temperature_change",
-)  # fmt: skip
-"""What follows from the readings: differences, which a pencil can do."""
-
-_HOW = {
-    "evaporator_temperature_difference": "source inlet minus saturation at the low-side gauge",
-    "superheat": "evaporator outlet minus saturation at the low-side gauge",
-    "compressor_superheat": "suction line minus saturation at the low-side gauge",
-    "condenser_temperature_difference": "saturation at the high-side gauge minus sink inlet",
-    "subcooling": "saturation at the high-side gauge minus liquid line",
-    "heat_source_temperature_change": "inlet minus outlet",
-    "heat_sink_temperature_change": "outlet minus inlet",
-}
-_MOST_COLUMNS = 11
+_MOST_COLUMNS = 7
+"""More temperatures leave no room for a pencil beside them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,14 +64,14 @@ def instrument_words(plant: PlantData, data: SystemData, key: str, value: float 
     return f"{name} ± {size_text(plant.display, kind, budget.expanded())}"
 
 
-def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float]) -> list[tuple[str, str, str]]:
+def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float | None]) -> list[tuple[str, str, str]]:
     """The instruments that will read these quantities, with serial and end of calibration; all where none fits."""
     from commission.acceptance.choosing import choose_instrument
 
-    instruments = plant.loaded.plant.instruments
+    instruments, measured = plant.loaded.plant.instruments, data.system.measured_with
+    air = plant.loaded.barometric_pressure
     names = {
-        choose_instrument(k, v, instruments, data.system.measured_with, plant.loaded.barometric_pressure)
-        for k, v in wanted.items()
+        measured.get(k) if v is None else choose_instrument(k, v, instruments, measured, air) for k, v in wanted.items()
     }
     chosen = {n: i for n, i in instruments.items() if n in names} or instruments
     return [
@@ -94,32 +79,87 @@ def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float]) -> li
     ]
 
 
-def _readable(data: SystemData, keys: tuple[str, ...]) -> tuple[str, ...]:
-    """Those of the keys that can be read of this system: no pressures of a factory-sealed unit."""
+def _values(data: SystemData) -> dict[str, float]:
+    """Conditions and expected values at the rated condition, SI."""
+    if data.rated is None:
+        return {}
+    return {**data.rated.conditions, **{k: e.value for k, e in data.rated.expected.items()}}
+
+
+def asked(plant: PlantData, data: SystemData) -> tuple[tuple[str, ...], tuple[str, ...]]:
+    """Conditions, and readings: all that the live sheet of the system asks for, whether it can be expected or not."""
+    if data.model is None:
+        conditions = ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
+    else:
+        conditions = list(data.model.condition_axes)
+    values = _values(data)
+    readings = readings_of(plant.loaded, data.system, values, frozenset(conditions))
+    of_media = [k for k in readings if k.startswith("heat_s") and values and k not in values]
+    return (*conditions, *of_media), tuple(k for k in readings if k not in of_media)
+
+
+def worked_out(data: SystemData, readings: tuple[str, ...]) -> tuple[str, ...]:
+    """What is worked out from the readings of a system: nothing that is read itself, no pressures of a sealed unit."""
     from commission.acceptance.choosing import cannot_be_read
 
-    return tuple(k for k in keys if cannot_be_read(k, data.system) is None)
+    keys = [k for k in WORKED_OUT if cannot_be_read(k, data.system) is None and k not in readings]
+    if "gas_cooler_outlet_temperature" not in readings:
+        keys.remove("gas_cooler_approach")
+    given = data.model.condition_axes if data.model is not None else {}
+    settled = [f"heat_{s}_temperature_change" for s in ("source", "sink") if _both_ends(s) <= set(given)]
+    return tuple(k for k in keys if k not in settled)
 
 
-def _rows(
-    plant: PlantData, data: SystemData, keys: tuple[str, ...], points: tuple[GridPoint, ...]
-) -> tuple[SheetRow, ...]:
-    rows = []
-    display = plant.display
-    for key in _readable(data, keys):
-        expected = [p.prediction.expected[key] for p in points if p.prediction and key in p.prediction.expected]
-        if not expected:
-            continue
-        rows.append(
-            SheetRow(
-                label_of(key),
-                unit_of(display, NOMENCLATURE[key].kind),
-                _HOW.get(key, ""),
-                "" if key in _HOW else instrument_words(plant, data, key, expected[-1].value),
-                tuple(grid_cell(p, key, display) for p in points),
-            )
+def _both_ends(side: str) -> set[str]:
+    return {f"heat_{side}_{end}_temperature" for end in ("inlet", "outlet")}
+
+
+def _read_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> tuple[SheetRow, ...]:
+    display, values = plant.display, _values(data)
+    readings = asked(plant, data)[1]
+    rows = [
+        SheetRow(
+            label_of(key),
+            unit_of(display, NOMENCLATURE[key].kind),
+            "",
+            instrument_words(plant, data, key, values.get(key)),
+            tuple(grid_cell(p, key, display) for p in points),
         )
+        for key in readings
+    ]
+    if "superheat" in worked_out(data, readings):
+        rows.append(_outlet_row(plant, data, points))
     return tuple(rows)
+
+
+def _outlet_row(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> SheetRow:
+    """The pipe at the evaporator outlet, read with what reads the suction line."""
+    display, found = plant.display, [evaporator_outlet(p.prediction) if p.prediction else None for p in points]
+    cells = tuple(Cell("–", "") if e is None else cell("", e, Kind.TEMPERATURE, display) for e in found)
+    probe = instrument_words(plant, data, "suction_temperature", _values(data).get("suction_temperature"))
+    return SheetRow(EVAPORATOR_OUTLET, unit_of(display, Kind.TEMPERATURE), "", probe, cells)
+
+
+def _cut(key: str, predictions: Sequence[Prediction]) -> str:
+    """What a band that was cut at zero leaves out, where one was."""
+    expected = [p.expected[key] for p in predictions if key in p.expected]
+    return next((text for e in expected if (text := less_than_zero(key, e.value, e.uncertainty))), "")
+
+
+def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> tuple[SheetRow, ...]:
+    display, predictions = plant.display, [p.prediction for p in points if p.prediction]
+    fluid = data.model.refrigerant if data.model else None
+    return tuple(
+        SheetRow(
+            label_of(key),
+            unit_of(display, NOMENCLATURE[key].kind),
+            "; ".join(t for t in (how(key, fluid, predictions, display), _cut(key, predictions)) if t),
+            "",
+            tuple(grid_cell(p, key, display) for p in points),
+        )
+        for key in worked_out(data, asked(plant, data)[1])
+        if not points or any(key in p.expected for p in predictions)
+    )
 
 
 def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetTable, ...]:
@@ -133,30 +173,11 @@ def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetT
     for start in range(0, n, size or 1):
         points = shown[start : start + size]
         heads = tuple(display.number(p.temperature, Kind.TEMPERATURE, 0) for p in points)
-        tables.append(SheetTable(heads, _rows(plant, data, READ, points), _rows(plant, data, WORKED_OUT, points)))
+        tables.append(SheetTable(heads, _read_rows(plant, data, points), _worked_out_rows(plant, data, points)))
     return tuple(tables)
 
 
-def _plain_rows(data: SystemData, keys: tuple[str, ...], display: Display) -> tuple[SheetRow, ...]:
-    """Rows without expectations, for a system that cannot be calculated."""
-    return tuple(
-        SheetRow(
-            label_of(k),
-            unit_of(display, NOMENCLATURE[k].kind),
-            _HOW.get(k, ""),
-            data.system.measured_with.get(k, ""),
-            (),
-        )
-        for k in _readable(data, keys)
-    )
-
-
 def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
-    keys = (
-        list(data.model.condition_axes)
-        if data.model
-        else ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
-    )
     rated = data.rated.conditions if data.rated else {}
     display = plant.display
     return [
@@ -166,30 +187,26 @@ def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
             "rated": stated_number(display, rated[k], NOMENCLATURE[k].kind) if k in rated else "",
             "instrument": instrument_words(plant, data, k, rated.get(k)),
         }
-        for k in keys
+        for k in asked(plant, data)[0]
     ]
-
-
-def _wanted(data: SystemData) -> dict[str, float]:
-    """What will be read, at its rated value in SI."""
-    if data.rated is None:
-        return {}
-    read = {k: data.rated.expected[k].value for k in _readable(data, READ) if k in data.rated.expected}
-    return {**data.rated.conditions, **read}
 
 
 def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
     """The sheet as a page: made to be printed, filled in with a pencil, and filed as a record afterwards."""
+    from commission.acceptance.choosing import cannot_be_read
+
     display = plant.display
+    conditions, readings = asked(plant, data)
+    values = _values(data)
     grid = data.grid if data.grid and any(p.prediction for p in data.grid.points) else None
     tables = (
         sheet_tables(plant, data, grid)
         if grid
-        else (SheetTable((), _plain_rows(data, READ, display), _plain_rows(data, WORKED_OUT, display)),)
+        else (SheetTable((), _read_rows(plant, data, ()), _worked_out_rows(plant, data, ())),)
     )
     context: dict[str, Any] = {
         "because": data.because,
-        "no_gauges": _readable(data, READ) != READ,
+        "no_gauges": cannot_be_read("suction_pressure", data.system) is not None,
         "plant_name": plant.name,
         "system_name": data.name,
         "digest": plant.loaded.digest[:12],
@@ -198,7 +215,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),
         "fixed": grid_conditions(plant, data, grid) if grid else "",
-        "instruments": _used(plant, data, _wanted(data)),
+        "instruments": _used(plant, data, {k: values.get(k) for k in (*conditions, *readings)}),
         "saturation": data.page("saturation-table"),
         "live_sheet": data.page("live-sheet"),
     }

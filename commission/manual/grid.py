@@ -72,10 +72,20 @@ def outdoor_axis(loaded: LoadedPlant, system: System) -> tuple[str, str]:
     return key, NOMENCLATURE[key].label.removesuffix(" temperature")  # headings add that word to either name
 
 
+def highest_asked(model: SystemModel, key: str) -> float:
+    """Up to where (K) a sheet runs along a condition: the end of its range, or the heating limit, above which no heat
+    is asked for."""
+    high = model.condition_axes[key].high
+    curve = model.facts.system.controls.weather_curve
+    if curve is None or curve.heating_limit is None or model.facts.source_liquid is not None:
+        return high
+    return min(high, curve.heating_limit) if key == "heat_source_inlet_temperature" else high
+
+
 def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[float, ...]:
     """The temperatures of the printed grid in K: multiples of 5 °C that cover the site's weather and the rated point.
 
-    They stay inside the range that the model states for this condition.
+    They stay inside the range that the model states for this condition, and within its heating limit.
     """
     axis = model.condition_axes[key]
     climate = loaded.plant.plant.climate
@@ -85,7 +95,8 @@ def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[flo
     first = math.floor(round((low - _ZERO_C) / STEP, 6))
     last = math.ceil(round((high - _ZERO_C) / STEP, 6))
     all_of_them = [n * STEP + _ZERO_C for n in range(first, last + 1)]
-    inside = [t for t in all_of_them if axis.low - 1e-6 <= t <= axis.high + 1e-6]
+    end = highest_asked(model, key)
+    inside = [t for t in all_of_them if axis.low - 1e-6 <= t <= end + 1e-6]
     return tuple(inside[-_MOST_POINTS:])
 
 

@@ -96,8 +96,11 @@ def bare_plan(loaded: LoadedPlant, system: System) -> LivePlan:
 def readings_of(
     loaded: LoadedPlant, system: System, values: Mapping[str, float], conditions: frozenset[str]
 ) -> tuple[str, ...]:
-    """What is read directly: what the plant says it measures, and what it has an instrument for."""
-    from commission.acceptance.choosing import DIRECT, cannot_be_read
+    """What is read directly: what the plant says it measures, and what it has an instrument for.
+
+    The pipes of a factory-sealed unit lie in a casing that stays shut, unless `measured_with` says otherwise.
+    """
+    from commission.acceptance.choosing import DIRECT, PIPE_TEMPERATURES, cannot_be_read
 
     instruments = loaded.plant.instruments
     asked = []
@@ -106,7 +109,7 @@ def readings_of(
             continue
         if key in system.measured_with:
             asked.append(key)
-        elif key in DERIVED:
+        elif key in DERIVED or (system.sealed and key in PIPE_TEMPERATURES):
             continue
         elif key in DIRECT and (key in values or not values):
             fits = instruments_of(loaded, system, (key,), values)[key] is not None

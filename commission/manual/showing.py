@@ -88,12 +88,29 @@ def unit_of(display: Display, kind: Kind) -> str:
     return pretty(display.unit_and_digits(kind)[0])
 
 
-def band_text(display: Display, kind: Kind, value: float, uncertainty: float | None) -> str:
-    """The band around an expected value, numbers alone: `2.21 to 2.41`, or how small it is."""
+_BELOW_ZERO = {
+    "superheat": "liquid leaves the evaporator",
+    "compressor_superheat": "liquid in the suction line",
+    "subcooling": "flash gas in the liquid line",
+}
+"""What it means where one of these reads less than zero: a machine that does so is not the one that is expected."""
+
+
+def less_than_zero(key: str, value: float, uncertainty: float | None) -> str:
+    """What lies below zero, where the band of a difference that cannot be negative is shown from zero only."""
+    if key not in _BELOW_ZERO or uncertainty is None or not 0.0 <= value < COVERAGE * uncertainty:
+        return ""
+    return f"less than 0 is {_BELOW_ZERO[key]}"
+
+
+def band_text(display: Display, kind: Kind, value: float, uncertainty: float | None, key: str = "") -> str:
+    """The band around an expected value, numbers alone: `2.21 to 2.41`, or how small it is; for a `key` that cannot be
+    negative, from zero."""
     if uncertainty is None:
         return "not stated"
     half = COVERAGE * uncertainty
-    low, high = (display.number(value + sign * half, kind) for sign in (-1, 1))
+    least = 0.0 if less_than_zero(key, value, uncertainty) else value - half
+    low, high = (display.number(end, kind) for end in (least, value + half))
     if low == high:
         digits = display.unit_and_digits(kind)[1]
         return f"within {10.0**-digits:.{digits}f}"
@@ -186,13 +203,14 @@ def show(
 ) -> Row:
     """The row of an explained number."""
     kind = kind_of(explained)
+    meant = NOMENCLATURE[key].definition if key in NOMENCLATURE else ""
     return Row(
         key=key,
         label=label_of(key),
-        definition=NOMENCLATURE[key].definition if key in NOMENCLATURE else "",
+        definition="; ".join(t for t in (meant, less_than_zero(key, explained.value, explained.uncertainty)) if t),
         value=display.number(explained.value, kind),
         unit=unit_of(display, kind),
-        band=band_text(display, kind, explained.value, explained.uncertainty),
+        band=band_text(display, kind, explained.value, explained.uncertainty, key),
         how=show_how(explained, display, assumptions, parts),
     )
 

@@ -28,7 +28,7 @@ from commission.manual.showing import (
 )
 from commission.manual.stated import promises, rated_tables
 from commission.manual.upkeep_pages import NextDuty
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import NOMENCLATURE, Display, Explained, Kind
 
 
 def what_it_is(
@@ -210,8 +210,13 @@ def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
     explained = point.prediction.expected.get(key) if point.prediction else None
     if explained is None:
         return Cell("–", "")
-    kind = NOMENCLATURE[key].kind
-    return Cell(display.number(explained.value, kind), band_text(display, kind, explained.value, explained.uncertainty))
+    return cell(key, explained, NOMENCLATURE[key].kind, display)
+
+
+def cell(key: str, explained: Explained, kind: Kind, display: Display) -> Cell:
+    """The cell of one value of a kind; no `key` where it has none in the nomenclature."""
+    band = band_text(display, kind, explained.value, explained.uncertainty, key)
+    return Cell(display.number(explained.value, kind), band)
 
 
 def _grid_row(

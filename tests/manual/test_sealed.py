@@ -1,4 +1,4 @@
-"""A factory-sealed unit on paper."""
+"""What the pencil day sheet asks for: of every system all that its proof needs, of a sealed unit what it shows."""
 
 from __future__ import annotations
 
@@ -6,16 +6,67 @@ from pathlib import Path
 from types import SimpleNamespace
 from typing import Any
 
+import pytest
+
 from commission.acceptance.choosing import FROM_PRESSURES, PRESSURES
 from commission.description import load_plant
-from commission.manual.day_sheet import READ, WORKED_OUT, _readable
+from commission.manual.day_sheet import asked, worked_out
+from commission.manual.grid import temperatures
+from commission.manual.showing import band_text, less_than_zero
+from commission.manual.worked_out import how
+from commission.prediction import fit
+from commission.quantities import Display, Kind
+
+
+def _system(folder: Path, identity: str) -> tuple[Any, Any]:
+    loaded = load_plant(folder)
+    model = fit(loaded, identity)
+    data = SimpleNamespace(system=loaded.system(identity), model=model, rated=model.predict())
+    return SimpleNamespace(loaded=loaded), data
 
 
 def test_the_day_sheet_of_a_sealed_unit_has_no_line_for_a_gauge(example_folder: Path) -> None:
-    """Pressures and what is worked out from them stay off the sheet of a unit without ports, and only off that."""
-    loaded = load_plant(example_folder)
-    sealed: Any = SimpleNamespace(system=loaded.system("floor-heating"))
-    assert not {*_readable(sealed, READ), *_readable(sealed, WORKED_OUT)} & {*PRESSURES, *FROM_PRESSURES}
-    assert "discharge_temperature" in _readable(sealed, READ)
-    ported: Any = SimpleNamespace(system=loaded.system("cold-room"))
-    assert (_readable(ported, READ), _readable(ported, WORKED_OUT)) == (READ, WORKED_OUT)
+    """No pressures, nothing worked out from them, and no pipe inside the casing but the one that is named."""
+    plant, data = _system(example_folder, "floor-heating")
+    conditions, readings = asked(plant, data)
+    shut = {*PRESSURES, *FROM_PRESSURES, "suction_temperature", "liquid_temperature"}
+    assert not {*conditions, *readings, *worked_out(data, readings)} & shut
+    assert {"discharge_temperature", "heat_sink_inlet_temperature"} <= set(readings)
+
+
+@pytest.mark.parametrize("identity", ["cold-room", "freezer-room", "dining-hall", "floor-heating", "shower-water"])
+def test_the_day_sheet_asks_for_all_that_is_measured(example_folder: Path, identity: str) -> None:
+    """Every quantity of `measured_with` has a line, among the conditions or among the readings."""
+    plant, data = _system(example_folder, identity)
+    conditions, readings = asked(plant, data)
+    assert set(data.system.measured_with) <= {*conditions, *readings}
+    assert not set(conditions) & set(readings)
+    assert set(conditions) >= {k for k in data.system.measured_with if k.endswith(("wet_bulb", "humidity"))}
+
+
+def test_a_band_that_cannot_be_negative_starts_at_zero() -> None:
+    """A subcooling of 1.0 K +- 1.2 K is shown from zero with what lies below; a plain difference is left alone."""
+    display, kind = Display("metric", 101325.0), Kind.TEMPERATURE_DIFFERENCE
+    assert band_text(display, kind, 1.0, 0.6, "subcooling") == "0.0 to 2.2"
+    assert less_than_zero("subcooling", 1.0, 0.6) == "less than 0 is flash gas in the liquid line"
+    assert band_text(display, kind, 1.0, 0.6, "gas_cooler_approach") == "−0.2 to 2.2"
+    assert less_than_zero("subcooling", 1.0, 0.4) == ""
+
+
+def test_the_line_loss_is_said_where_a_gauge_lies_beyond_it(example_folder: Path) -> None:
+    """Source inlet minus evaporating is 1.0 K more by the gauge than in the evaporator, and the label says so."""
+    _, data = _system(example_folder, "cold-room")
+    e = {k: x.value for k, x in data.rated.expected.items()}
+    loss = e["evaporating_temperature"] - data.model.refrigerant.dew_temperature(e["suction_pressure"])
+    text = how("evaporator_temperature_difference", data.model.refrigerant, [data.rated], Display("metric", 101325.0))
+    assert f"plus the line loss of {loss:.1f} K, as it is in the evaporator" in text
+    assert loss == pytest.approx(1.0, abs=0.1)
+
+
+def test_no_column_beyond_the_heating_limit(example_folder: Path) -> None:
+    """The weather grid of a heat pump with a weather curve ends where no heat is asked for."""
+    plant, data = _system(example_folder, "floor-heating")
+    limit = data.system.controls.weather_curve.heating_limit
+    found = temperatures(plant.loaded, "heat_source_inlet_temperature", data.model)
+    assert max(found) == pytest.approx(limit)
+    assert len(found) > 3
