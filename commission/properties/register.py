@@ -5,7 +5,7 @@ Figures live in `register.yaml`; a plant overrides any of them, giving its own s
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 from functools import cache
 from typing import Any
@@ -167,11 +167,26 @@ def _overridden(entry: RegisterEntry, key: str, plain: Mapping[str, Any]) -> Reg
 def _book() -> Mapping[str, RegisterEntry]:
     from commission.properties.models import other_names, read_yaml
 
-    data = read_yaml("register.yaml")
-    names = other_names()
-    return {
-        name: _entry(name, plain, names.get(name, ()), data["sources"]) for name, plain in data["refrigerants"].items()
-    }
+    return _Book(read_yaml("register.yaml"), other_names())
+
+
+class _Book(Mapping[str, RegisterEntry]):
+    """The register of the package; an entry is made when it is asked for, since a plant has one or two of forty."""
+
+    def __init__(self, data: Mapping[str, Any], names: Mapping[str, tuple[str, ...]]) -> None:
+        self._plain, self._sources, self._names = data["refrigerants"], data["sources"], names
+        self._made: dict[str, RegisterEntry] = {}
+
+    def __getitem__(self, name: str) -> RegisterEntry:
+        if name not in self._made:
+            self._made[name] = _entry(name, self._plain[name], self._names.get(name, ()), self._sources)
+        return self._made[name]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._plain)
+
+    def __len__(self) -> int:
+        return len(self._plain)
 
 
 def _entry(name: str, plain: Mapping[str, Any], others: tuple[str, ...], sources: Mapping[str, str]) -> RegisterEntry:
