@@ -10,8 +10,11 @@ SHAPE = EfficiencyShape(0.04, 1.1, 0.006, 0.15, 0.08)
 KELVIN = 273.15
 
 
-def machine(fluid: Refrigerant, air_share: float | None = None, heating_share: float = 0.0) -> SingleStage:
-    """A machine that takes about 5 kW at -5 °C and 40 °C; `air_share` makes its coil a wet one."""
+def machine(
+    fluid: Refrigerant, air_share: float | None = None, heating_share: float = 0.0, superheat: float = 6.0
+) -> SingleStage:
+    """A machine that takes about 5 kW at -5 °C and 40 °C; `air_share` makes its coil a wet one. A superheat of 4 K the
+    coil can give at all conditions of the maps, one of 6 K not."""
     effect = fluid.dew(268.15).h - fluid.bubble(313.15).h
     displacement = 5000.0 / (fluid.dew(268.15).rho * effect * 0.8)
     return SingleStage(
@@ -19,7 +22,7 @@ def machine(fluid: Refrigerant, air_share: float | None = None, heating_share: f
         Compressor(displacement, 0.95, 0.85, SHAPE, 0.05),
         Exchanger(900.0, 0.6, 0.5, air_share),
         Exchanger(900.0, 0.8, 0.5),
-        superheat=6.0,
+        superheat=superheat,
         subcooling=3.0,
         suction_line=SuctionLine(1.0, heating_share, 3.0),
         discharge_line_loss=0.4,

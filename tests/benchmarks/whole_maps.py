@@ -11,16 +11,19 @@ from tests.benchmarks.timing import Row, interleaved, spent
 
 RATIO, SAME = 8.0, 1e-5
 CASES = (
-    ("R-290", None, 0.0, "dry coil"),
-    ("R-290", 0.75, 0.0, "wet coil"),
-    ("R-290", 0.75, 0.1, "wet coil, suction line in the air of the sink"),
-    ("R-454B", 0.75, 0.0, "wet coil"),
+    ("R-290", None, 0.0, 4.0, "dry coil"),
+    ("R-290", 0.75, 0.0, 4.0, "wet coil"),
+    ("R-290", 0.75, 0.0, 6.0, "wet coil, more superheat set than it can give"),
+    ("R-290", 0.75, 0.1, 4.0, "wet coil, suction line in the air of the sink"),
+    ("R-454B", 0.75, 0.0, 4.0, "wet coil"),
 )
 
 
-def against_points(name: str, air_share: float | None, heating_share: float, how: str, repetitions: int, n: int) -> Row:
+def against_points(
+    name: str, air_share: float | None, heating_share: float, superheat: float, how: str, repetitions: int, n: int
+) -> Row:
     """The map over its points one by one, each started from its neighbour; both must agree to 1e-5 K."""
-    one = machine(refrigerant(name), air_share, heating_share)
+    one = machine(refrigerant(name), air_share, heating_share, superheat)
     around = None if heating_share else 20.0
     grid = [[media(float(a), float(b), around) for b in np.linspace(10, 38, n)] for a in np.linspace(-8, 12, n)]
     sources, sinks = [row[0].source for row in grid], [m.sink for m in grid[0]]
