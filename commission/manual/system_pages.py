@@ -106,7 +106,21 @@ def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str,
 def grid_conditions(plant: PlantData, data: SystemData, grid: Grid) -> str:
     """What stays while the grid's condition varies, and what the weather curve sets by it."""
     led = "; ".join(f"{label_of(k).lower()} as the weather curve sets it" for k in grid.led)
-    return "; ".join(text for text in (conditions_line(plant, data, grid.fixed), led) if text)
+    return "; ".join(
+        text for text in (conditions_line(plant, data, grid.fixed), led, _slowed(plant, data, grid)) if text
+    )
+
+
+def _slowed(plant: PlantData, data: SystemData, grid: Grid) -> str:
+    """Where the head-pressure control leaves least of the stated flow, and how much; empty where it never acts."""
+    from commission.prediction.operation import FULL, flow_left
+
+    shares = [(p.prediction.sink_flow_share, p.temperature) for p in grid.points if p.prediction is not None]
+    share, at = min(shares, default=(1.0, 0.0))
+    control = data.system.controls.head_pressure
+    if control is None or share >= FULL:
+        return ""
+    return f"the flow of the heat sink {flow_left(control.by, share)} at {plant.display.text(at, Kind.TEMPERATURE, 0)}"
 
 
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:

@@ -18,9 +18,13 @@ from commission.machine import (
 )
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
-from commission.prediction.frost import with_defrosts
+from commission.prediction.frost import no_frost_counted, with_defrosts
 
 ABOVE_CRITICAL = "above the critical point there is no condensing temperature"
+
+NEAR = 3.0
+"""Kelvin between the media below which a Carnot COP has no weight: it is past 90, and a kelvin moves it by a third."""
+TOO_NEAR = "the two media are within a few kelvin of each other"
 
 
 @dataclass(frozen=True, slots=True)
@@ -131,14 +135,19 @@ def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Foun
     if media.sink.outlet_wanted is not None:
         del found.values["heat_sink_outlet_temperature"]
         found.values["heat_sink_flow"] = media.sink.settled(balance.heat_to_sink).volume_flow
-    _add(
-        found,
-        "carnot_cop",
-        lambda: (
-            carnot_cooling(entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out))
-            + (1.0 if heats(facts) else 0.0)
-        ),
-    )
+    means = entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out)
+    _add(found, "carnot_cop", lambda: _carnot(*means) + (1.0 if heats(facts) else 0.0))
+
+
+def _carnot(source: float, sink: float) -> float:
+    """Carnot COP of cooling between the mean temperatures (K) of the media.
+
+    Raises:
+        NotCalculatedError: they are so near each other that the COP says nothing, or the sink is the colder one.
+    """
+    if 0.0 < sink - source < NEAR:
+        raise NotCalculatedError(TOO_NEAR)
+    return carnot_cooling(source, sink)
 
 
 def heats(facts: Facts) -> bool:
@@ -160,9 +169,11 @@ def frosts(facts: Facts, point: OperatingPoint) -> bool:
 
 def _frost(facts: Facts, plan: Plan, media: Media, point: OperatingPoint, found: Found) -> None:
     """Averages over whole cycles of frost and defrost, where the coil is below freezing."""
-    if not frosts(facts, point):
-        for key in ("heating_capacity_with_defrosts", "heating_cop_with_defrosts"):
-            found.reasons[key] = "the coil is above freezing: it stays clean and is not defrosted"
+    why = "the coil is above freezing: it stays clean and is not defrosted"
+    if frosts(facts, point):
+        why = no_frost_counted(media.source.temperature) or ""
+    if why:
+        found.reasons.update(dict.fromkeys(("heating_capacity_with_defrosts", "heating_cop_with_defrosts"), why))
         return
     heat, power = with_defrosts(plan.frost_share, media)
     found.values["heating_capacity_with_defrosts"] = heat * found.values["heating_capacity"]

@@ -34,6 +34,20 @@ def severity(outdoor: float, relative_humidity: float, pressure: float) -> float
     return run * max(moist_air(outdoor, pressure, relative_humidity=relative_humidity).W - held, 0.0) / damp
 
 
+def no_frost_counted(outdoor: float) -> str | None:
+    """Why nothing can be said of frost at this outdoor air (K), though the coil is below freezing; None where it can.
+
+    The test procedure takes a straight line through its points at 17 and 47 °F outside of that range: what little frost
+    there is stands in them unseen.
+    """
+    if COLD < outdoor < WARM:
+        return None
+    return (
+        f"the method counts frost from {COLD - 273.15:.1f} to {WARM - 273.15:.1f} °C outdoors only, while this coil is "
+        "below freezing and collects some: the average lies a little below the steady value"
+    ).replace("-", "−", 1)
+
+
 def counts_defrosts(facts: Facts, point: RatedPoint) -> bool:
     """Whether a rated point is an average over frost and defrosts that the model has to lower its steady heat by."""
     return point.frost_included is True and facts.heats_from_air

@@ -16,11 +16,14 @@ Corners = Sequence[tuple[float, float]]
 ON_THE_EDGE = 0.05
 """Distance in K from the edge of an envelope within which a point still counts as inside: what a page can show."""
 
+ABOVE_THE_CONTROLLER = 5e4
+"""Pa above the highest pressure of a controller from which it is told: the model rounds off the corner there."""
+
 
 def beyond_limits(facts: Facts, values: Mapping[str, float], conditions: Mapping[str, float]) -> tuple[str, ...]:
     """A sentence for each stated limit that the expected `values` (SI, keys of the nomenclature) lie beyond."""
     values = {**values, "evaporating_temperature": suction_dew_point(values)}
-    limits = (_envelope, _polynomials, _devices)
+    limits = (_envelope, _polynomials, _devices, _controller)
     return (*(text for limit in limits for text in limit(facts, values)), *_heating_limit(facts, conditions))
 
 
@@ -114,6 +117,22 @@ def _devices(facts: Facts, values: Mapping[str, float]) -> Iterator[str]:
                 f"{device}, set to {shown.of(key, setting)}, stops the machine before it reaches the expected "
                 f"{shown.of(key, values[key])}"
             )
+
+
+def _controller(facts: Facts, values: Mapping[str, float]) -> Iterator[str]:
+    """The high pressure of a gas cooler that its controller would not let rise so far."""
+    control, shown = facts.system.controls.gas_cooler_pressure, facts.shown
+    outlet = values.get("gas_cooler_outlet_temperature")
+    if control is None or control.highest is None or outlet is None:
+        return
+    highest = facts.loaded.absolute(control.highest)
+    if values["discharge_pressure"] > highest + ABOVE_THE_CONTROLLER:
+        yield (
+            f"{shown.of('discharge_pressure', values['discharge_pressure'])} lies above the highest pressure of the "
+            f"controller, {shown.of('discharge_pressure', highest)}: a gas-cooler outlet of "
+            f"{shown.of('gas_cooler_outlet_temperature', outlet)} needs it. The controller does not let it rise so "
+            "far, and the machine makes less heat than the values say"
+        )
 
 
 def _heating_limit(facts: Facts, conditions: Mapping[str, float]) -> Iterator[str]:

@@ -11,12 +11,13 @@ from commission.errors import CommissionError, InputError, NotCalculatedError, P
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete, followers, with_weather_curve
-from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
+from commission.prediction.expected import TOO_NEAR, Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
 from commission.prediction.facts import Facts, facts_of, left_out
 from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, frost_notes
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
+from commission.prediction.operation import told_of_operation
 from commission.prediction.rated import reference
 from commission.prediction.refusals import cannot_be, fitted, walk
 from commission.properties import Refrigerant
@@ -28,6 +29,8 @@ RATED_FIGURES = (
     "compressor_power", "power_input",
 )  # fmt: skip
 """Quantities that carry the scatter of rated points about the fit themselves."""
+VAGUE = 0.2
+"""Standard uncertainty over value from which a Carnot COP is not told."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,7 +40,8 @@ class Prediction:
     `filled` lists the conditions that were not given and taken from the rated one; a flow temperature that was taken
     from the weather curve is not among them but in a sentence of `warnings`. `parts` holds, for each expected
     key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root sum of
-    squares. `not_calculated` gives the reason for each quantity that has no value.
+    squares. `not_calculated` gives the reason for each quantity that has no value. `sink_flow_share` is the mean
+    flow of the heat sink that the head-pressure control leaves, over that of the conditions.
     """
 
     system: str
@@ -49,6 +53,7 @@ class Prediction:
     states: tuple[StatePoint, ...]
     warnings: tuple[str, ...]
     parts: Mapping[str, Mapping[str, float]]
+    sink_flow_share: float = 1.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -279,12 +284,14 @@ class SystemModel:
                 if abs(amount) > ROUNDING * abs(nominal.values[key]):
                     _add_part(parts[key], cause, amount)
         self._own_parts(nominal, parts)
+        _drop_vague_carnot(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
         warnings = [*outside, *point.warnings, *self.refrigerant.warnings, *self.left_out]
         if frosts(self.facts, point):
             warnings.append(
                 "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
             )
+        warnings += told_of_operation(self.facts, whole, point)
         warnings += beyond_limits(self.facts, nominal.values, whole)
         if beats_carnot(self.facts, nominal.values):
             warnings.append("the predicted COP lies above Carnot: what is stated of this system cannot be")
@@ -298,6 +305,7 @@ class SystemModel:
             point.states,
             tuple(dict.fromkeys(warnings)),
             parts,
+            point.balance.sink_flow_share,
         )
 
     def _own_parts(self, nominal: Found, parts: dict[str, dict[str, float]]) -> None:
@@ -316,6 +324,14 @@ class SystemModel:
 
 ROUNDING = 1e-9
 """Relative change of a value below which a cause does not move it: solver and properties agree to that."""
+
+
+def _drop_vague_carnot(nominal: Found, parts: Mapping[str, Mapping[str, float]]) -> None:
+    """Takes a Carnot COP out that is known no better than to a fifth: the media lie near each other."""
+    value = nominal.values.get("carnot_cop")
+    if value is not None and math.hypot(*parts["carnot_cop"].values()) > VAGUE * value:
+        del nominal.values["carnot_cop"]
+        nominal.reasons["carnot_cop"] = TOO_NEAR
 
 
 def _add_part(parts: dict[str, float], cause: str, amount: float) -> None:

@@ -40,7 +40,10 @@ def test_first_law_at_every_outdoor_temperature(cold_room: SystemModel) -> None:
         line = v["refrigerant_flow"] * (states["2"].h - states["1"].h)
         given = v["cooling_capacity"] + line + (1 - share) * v["compressor_power"]
         assert v["heating_capacity"] == pytest.approx(given, rel=1e-6)
-        assert v["cooling_capacity"] / v["compressor_power"] < v["carnot_cop"]
+        if "carnot_cop" in v:
+            assert v["cooling_capacity"] / v["compressor_power"] < v["carnot_cop"]
+        else:  # the room and the air outdoors nearly meet, or the air is the colder one
+            assert outdoors < 20
 
 
 def test_trends_with_outdoor_temperature(cold_room: SystemModel) -> None:
