@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 from commission.errors import NotCalculatedError
@@ -87,12 +87,23 @@ def _context(
         "rows": [_proof(r, data, plant.display) for r in readings],
         "promises": [_promise(g, plant.display) for g in found.guarantees],
         "not_read": _by_reason(found),
-        "warnings": found.warnings,
-        "refusals": [(r.route, label_of(r.key), r.reason) for r in found.refusals],
+        "warnings": [_ahead(w) for w in found.warnings],
+        "refusals": [(r.route, label_of(r.key), _ahead(r.reason)) for r in found.refusals],
         "assumptions_page": data.page("assumptions"),
         "weather": _over_weather(plant, data, forecast, on),
         "axis": data.grid.title if data.grid else "",
     }
+
+
+def _ahead(text: str) -> str:
+    """A sentence of the judgement, said of a visit that is still to come."""
+    return text.replace(" was not read", " will not be read")
+
+
+def _planned(how: How) -> How:
+    """Workings for a visit to come: a condition is not yet a reading."""
+    inputs = (replace(i, origin="condition of this page") if i.origin == "reading" else i for i in how.inputs)
+    return replace(how, inputs=tuple(inputs))
 
 
 def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
@@ -104,7 +115,7 @@ def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow
         r.instrument or "from the readings above",
         size_text(display, kind, r.detectable),
         "" if r.good_enough else f"coarser than the calculation, ± {alone} by itself",
-        show_how(r.expected, display, data.assumptions),
+        _planned(show_how(r.expected, display, data.assumptions)),
     )
 
 
@@ -121,7 +132,7 @@ def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
         if spread is not None
         else None,
         "route": g.verdict.route,
-        "withheld": g.verdict.withheld,
+        "withheld": _ahead(g.verdict.withheld) if g.verdict.withheld else None,
         "what": g.verdict.what_would_decide,
     }
 

@@ -109,7 +109,16 @@ def _calculated(loaded: LoadedPlant, identity: str, slug: str, model: SystemMode
         effects = model.assumption_effects(_far_condition(grid, rated))
     except NotCalculatedError:
         effects = {}
-    return SystemData(identity, slug, system, model, None, rated, model.assumptions, grid, effects)
+    return SystemData(identity, slug, system, model, None, rated, _in_use(system, model), grid, effects)
+
+
+def _in_use(system: System, model: SystemModel) -> Mapping[str, Assumption]:
+    """The assumptions of the fitted model, and those on which only the heat-up of a store rests."""
+    if system.store is None:
+        return model.assumptions
+    from commission.prediction.heating_up import VOLUME
+
+    return {**model.assumptions, VOLUME: model.facts.assumptions[VOLUME]}
 
 
 def _sheets(loaded: LoadedPlant) -> dict[str, TestSheet | str]:
