@@ -79,7 +79,7 @@ def write_book(plant: PlantData, store: Store | None, progress: Callable[[str], 
     texts[ITEMS] = items_csv(archive.items).encode()
     for path in (CALENDAR, ITEMS):
         book.add_file(path)
-    coming = {d.id: found[0] for d in plant.systems if (found := next_duties(d, duties, 1))}
+    coming = {d.id: next_duties(d, duties) for d in plant.systems}
     book.add(plant_pages.at_a_glance(plant, standings, open_lines(plant, archive), counts, coming))
     book.add(safety_pages.emergency_page(plant))
     for data in plant.systems:

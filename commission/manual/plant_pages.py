@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from commission.manual.book import Sheet, slug
 from commission.manual.documents import DocumentLink
 from commission.manual.facts import DUTY_WORDS, Fact
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.states import Next, Standing, Step, most_urgent, next_step, steps, where_they_stand
-from commission.manual.upkeep_pages import NextDuty
+from commission.manual.states import Next, Standing, Step, has_faults, most_urgent, next_step, steps, where_they_stand
+from commission.manual.upkeep_pages import PAGE, NextDuty
 from commission.quantities import NOMENCLATURE, Display, Kind, methods
 
 
@@ -23,6 +23,28 @@ class OpenLine:
     system: str
     who: str | None
     due: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class DatedLine:
+    """Something that is due by a day, `until` as text, with its place in the manual."""
+
+    until: str
+    what: str
+    system: str
+    page: str
+    anchor: str
+
+
+def by_date(
+    open_items: Iterable[OpenLine], coming: Mapping[str, Iterable[NextDuty]], count: int = 3
+) -> tuple[DatedLine, ...]:
+    """Open items with a day, and the duties of each system by its name: the nearest or longest overdue first."""
+    lines = [
+        DatedLine(i.due, i.what, i.system, "open-items", f"item-{i.number}") for i in open_items if i.due is not None
+    ]
+    lines += [DatedLine(d.until, d.what, name, PAGE, d.anchor) for name, found in coming.items() for d in found]
+    return tuple(sorted(lines, key=lambda line: line.until)[:count])
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,9 +65,13 @@ def at_a_glance(
     standings: dict[str, Standing],
     open_items: tuple[OpenLine, ...],
     counts: dict[str, int],
-    coming: Mapping[str, NextDuty],
+    duties: Mapping[str, tuple[NextDuty, ...]],
 ) -> Sheet:
-    """The front page: what plant this is, where each system stands, what is open, what to do next."""
+    """The front page: what plant this is, where each system stands, what is open, what to do next.
+
+    `duties` are the next ones of each system by its id.
+    """
+    coming = {identity: found[0] for identity, found in duties.items() if found}
     shown, urgent = [], []
     for data in plant.systems:
         pages = {
@@ -84,6 +110,8 @@ def at_a_glance(
     context = {
         "systems": shown,
         "urgent": most_urgent(urgent),
+        "faults": has_faults(tuple(standings.values())),
+        "dated": by_date(open_items, {d.name: duties.get(d.id, ()) for d in plant.systems}),
         "address": site.address,
         "summary": _summary(plant),
         "place": _place(plant),

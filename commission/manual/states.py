@@ -165,16 +165,25 @@ def next_step(s: Standing, pages: dict[str, str]) -> Next:
     )
 
 
+def _rank(s: Standing) -> int:
+    """How urgent a system is: what cannot be calculated, errors, a failed test, then the rest."""
+    failed = bool(s.tests) and s.tests[-1].outcome == "not conforming"
+    ranks = (s.because is not None, s.errors > 0, failed, not s.visits, not s.accepted and s.promised)
+    return next((n for n, hit in enumerate(ranks) if hit), len(ranks))
+
+
+_FAULTS = 3
+"""Ranks below this one are faults: they come before anything that is only due by a date."""
+
+
 def most_urgent(steps_next: Sequence[tuple[str, Next, Standing]]) -> tuple[str, Next] | None:
-    """The system that should be looked at first: what cannot be calculated, errors, failed tests, then the rest."""
-
-    def order(item: tuple[str, Next, Standing]) -> int:
-        s = item[2]
-        failed = bool(s.tests) and s.tests[-1].outcome == "not conforming"
-        ranks = (s.because is not None, s.errors > 0, failed, not s.visits, not s.accepted and s.promised)
-        return next((n for n, hit in enumerate(ranks) if hit), len(ranks))
-
+    """The system that should be looked at first."""
     if not steps_next:
         return None
-    name, step, _ = min(steps_next, key=order)
+    name, step, _ = min(steps_next, key=lambda item: _rank(item[2]))
     return name, step
+
+
+def has_faults(standings: Sequence[Standing]) -> bool:
+    """Whether a system cannot be calculated, has errors, or failed its last test."""
+    return any(_rank(s) < _FAULTS for s in standings)

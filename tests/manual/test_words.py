@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 import pytest
@@ -14,14 +14,25 @@ from commission.manual.figures import Chart, Line, by_night, draw_chart
 from commission.manual.figures.style import FIRST, INK
 from commission.manual.page_display import PageDisplay
 from commission.manual.paper import css_string
+from commission.manual.plant_pages import OpenLine, by_date
 from commission.manual.saturation import table_temperatures
 from commission.manual.showing import band_text, grouped, show, show_input, sourced, spread_text
-from commission.manual.states import Standing, Visit, most_urgent, next_step, plural, steps, where_they_stand
+from commission.manual.states import (
+    Standing,
+    Visit,
+    has_faults,
+    most_urgent,
+    next_step,
+    plural,
+    steps,
+    where_they_stand,
+)
+from commission.manual.upkeep_pages import NextDuty
 from commission.quantities import Display, Explained, Input, Kind
 
 METRIC = Display("metric", 97655.0)
 US = Display("us_customary", 97655.0)
-PAGES = {k: k for k in ("what", "findings", "checklist", "day_sheet", "test", "open")}
+PAGES = {k: k for k in ("what", "findings", "checklist", "day_sheet", "test", "open", "records")}
 
 
 @pytest.mark.parametrize(
@@ -172,6 +183,7 @@ CASES = [
     Case(_standing(FAILED, items=1), (True, True, True, False), "Find and remove", "open"),
     Case(_standing(PASSED, items=2), (True, True, True, True), "Close 2 open items", "open"),
     Case(_standing(PASSED), (True, True, True, True), "Compare the next visit", "day_sheet"),
+    Case(replace(_standing(PASSED), unanswered=31), (True, True, True, True), "Answer 31 items", "records"),
 ]
 
 
@@ -198,6 +210,26 @@ def test_the_most_urgent_system_comes_first() -> None:
     assert most_urgent(items) == ("2", items[2][1])
     assert most_urgent(items[:2]) == ("1", items[1][1])
     assert most_urgent([]) is None
+
+
+def test_what_is_due_first_stands_first() -> None:
+    """Open items and duties of all systems by their day; an item without a day is not among them."""
+    items = (OpenLine(4, "wash the coil", "Hall", None, "2026-11-30"), OpenLine(5, "a valve", "Hall", None, None))
+    duties = {"Hall": (NextDuty("due-a", "2026-12-24", "Read the log", ""),),
+              "Freezer": (NextDuty("due-b", "2026-10-20", "Search for leaks", ""),)}  # fmt: skip
+    found = by_date(items, duties)
+    assert [(d.system, d.what) for d in found] == [
+        ("Freezer", "Search for leaks"), ("Hall", "wash the coil"), ("Hall", "Read the log"),
+    ]  # fmt: skip
+    assert [(d.page, d.anchor) for d in found][:2] == [("upkeep", "due-b"), ("open-items", "item-4")]
+    assert by_date(items, duties, 1) == found[:1]
+
+
+def test_faults_come_before_what_is_only_due() -> None:
+    """A failed test, errors and what cannot be calculated are faults; a plant to be started is none."""
+    assert has_faults([_standing(PASSED), _standing(FAILED)])
+    assert has_faults([_standing(errors=1)])
+    assert not has_faults([_standing(PASSED), _standing()])
 
 
 def test_plural() -> None:
