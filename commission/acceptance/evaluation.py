@@ -153,10 +153,12 @@ def evaluate(
     derived.update(_capacities(routes, have))
     have.update({k: d.measured for k, d in derived.items()})
     expectations = _expectations(model, used, sheet, prediction, why, not_judged)
+    settled = _settled(used, have)
+    not_judged.update(settled)
     deviations = tuple(
         deviation(have[k], expectations[k])
         for k in NOMENCLATURE
-        if k in have and k in expectations and k not in used and k not in spent
+        if k in have and k in expectations and k not in {*used, *spent, *settled}
     )
     for key in have:
         if key not in expectations and key not in {*used, *day.spent, *not_judged, "barometric_pressure"}:
@@ -168,6 +170,16 @@ def evaluate(
         impossible(model.refrigerant, _independent(have, routes, power), inputs.shell), not_judged,
         tuple(dict.fromkeys(warnings)), closures(routes, power, inputs.shell), inputs.evaporator_fan, prediction,
     )  # fmt: skip
+
+
+def _settled(used: Mapping[str, Measured], have: Mapping[str, Measured]) -> dict[str, str]:
+    """Changes of a medium between two temperatures that are both conditions: what is expected is what was read."""
+    found = {}
+    for side in ("source", "sink"):
+        key, ends = f"heat_{side}_temperature_change", {f"heat_{side}_{e}_temperature" for e in ("inlet", "outlet")}
+        if key in have and ends <= set(used):
+            found[key] = "both of its temperatures are conditions: it could not be anything else"
+    return found
 
 
 def _measure_all(

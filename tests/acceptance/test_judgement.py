@@ -10,6 +10,8 @@ from pathlib import Path
 import pytest
 
 from commission.acceptance import Judgement, Reading, carry, judge, make_sheet
+from commission.acceptance.budget import Budget, Measured
+from commission.acceptance.evaluation import _settled
 from commission.acceptance.judgement import coarse, decide_guarantee
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
@@ -275,3 +277,12 @@ def test_carbon_dioxide_above_its_critical_point(tmp_path: Path) -> None:
     blind = judge(plant, model, outlet, visit(plant, model)[1], "trim", on=DAY)
     assert blind.deviations == ()
     assert "heat sink outlet temperature was not read" in blind.not_judged["suction_pressure"]
+
+
+def test_what_the_conditions_settle_is_not_judged() -> None:
+    """Where inlet and outlet of the sink are both conditions, their difference is no reading to judge."""
+    ends = {k: Measured(k, 300.0, Budget(())) for k in ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature")}
+    key = "heat_sink_temperature_change"
+    have = {**ends, key: Measured(key, 0.0, Budget(()))}
+    assert set(_settled(ends, have)) == {key}
+    assert _settled({k: v for k, v in ends.items() if "inlet" in k}, have) == {}
