@@ -14,6 +14,7 @@ from dataclasses import dataclass
 
 from commission.description.model import Store
 from commission.errors import NotCalculatedError
+from commission.prediction.element_below import Cold, heated_from_below
 from commission.prediction.expected import in_celsius
 from commission.prediction.model import Prediction, SystemModel
 from commission.properties import liquid
@@ -23,6 +24,9 @@ ABOVE = {"store top": 0.2, "store middle": 0.5, "store bottom": 1.0, "flow pipe"
 """Share of the store that an element heats, by where it sits (common practice: the top fifth, the upper half, all)."""
 NODES = ((-math.sqrt(0.6), 5 / 18), (0.0, 8 / 18), (math.sqrt(0.6), 5 / 18))
 """Gauss-Legendre nodes on -1 to 1 and weights on a length of 1, for the mixed store."""
+DRAWN = (0.0, 0.3, 0.55, 0.75)
+"""Shares of the way from start to goal at which a machine is asked that draws water warmed by an element below it; from
+the last on what it does is carried on in a straight line."""
 VOLUME = "store_volume_departure"
 Parts = dict[str, float]
 
@@ -197,13 +201,44 @@ def _result(
     try:
         power, above, delay, replaces = _element(model, steps)
         extra = (*inputs, _place(model, "power of the element", power, Kind.HEAT_FLOW, "back_up.power"))
-        both = _explained(
-            model, steps, lambda c, v: _with_element(steps, c, v, power, above, delay, replaces),
-            "heat_up_with_element", extra,
-        )  # fmt: skip
+        if once and above == 1.0 and not replaces:
+            from_below = _element_below(model, steps, layers, goal, power, delay)
+            both = _explained(model, steps, from_below, "heat_up_with_element_below", extra)
+        else:
+            both = _explained(
+                model, steps, lambda c, v: _with_element(steps, c, v, power, above, delay, replaces),
+                "heat_up_with_element", extra,
+            )  # fmt: skip
     except NotCalculatedError as error:
         return HeatUp(way, time, energy, None, None, str(error), warnings)
     return HeatUp(way, time, energy, *both, None, warnings)
+
+
+def _element_below(
+    model: SystemModel, steps: Sequence[_Step], layers: Sequence[float], goal: float, power: float, delay: float
+) -> Callable[[str | None, float], tuple[float, float]]:
+    """Time (s) and energy (J) with an element that warms the water which a machine in one pass draws."""
+    cool = [t for t in layers if t < goal]
+    start, heat = sum(cool) / len(cool), sum(s.heat for s in steps)
+    lost = sum(s.loss * s.heat for s in steps) / heat
+    inlets = [start + (goal - start) * share for share in DRAWN]
+    given = {**steps[0].at.conditions}
+    at = [_Step(heat, lost, model.predict({**given, "heat_sink_inlet_temperature": t})) for t in inlets]
+
+    def calculate(cause: str | None, volume: float) -> tuple[float, float]:
+        figures = [(s.power("heating_capacity", cause), s.power("power_input", cause)) for s in at]
+
+        def machine(drawn: float) -> tuple[float, float]:
+            n = min(max(sum(t < drawn for t in inlets[1:]), 0), len(inlets) - 2)
+            share = (drawn - inlets[n]) / (inlets[n + 1] - inlets[n])
+            (a, b), (c, d) = figures[n], figures[n + 1]
+            return a + share * (c - a), b + share * (d - b)
+
+        alone = _machine_alone(steps, cause, volume)[0]
+        cold = Cold(volume * heat / (goal - start), start, goal)
+        return heated_from_below(cold, machine, lost, power, delay, alone)
+
+    return calculate
 
 
 def _element(model: SystemModel, steps: Sequence[_Step]) -> tuple[float, float, float, bool]:

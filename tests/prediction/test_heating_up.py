@@ -10,6 +10,7 @@ import pytest
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import fit, heat_up
+from commission.prediction.element_below import Cold, heated_from_below
 
 Written = Callable[[str], LoadedPlant]
 HEATER = """
@@ -82,6 +83,39 @@ def test_the_element_helps_where_it_may(written: Written) -> None:
     power = cold.energy.value / cold.time.value
     assert cold.energy_with_element.value == pytest.approx(power * cold.time_with_element.value + by_element, rel=0.005)
     assert cold.energy_with_element.value > cold.energy.value
+
+
+def test_an_element_at_the_bottom_warms_what_the_machine_draws(written: Written) -> None:
+    """The machine draws warmer water and gives less, so that it takes longer than with its capacity of cold water, but
+    less than without the element."""
+    model = fit(written(_heater(more=ELEMENT.replace("store middle", "store bottom"))), "it")
+    cold = heat_up(model, 283.15, conditions={"heat_source_inlet_temperature": 265.15})
+    assert cold.time_with_element is not None
+    assert cold.energy_with_element is not None
+    heat = 999.7 * 4181 * 50
+    machine, power = heat / cold.time.value, cold.energy.value / cold.time.value
+    as_if_cold = (heat + 6000 * 1800) / (machine + 6000)
+    time = cold.time_with_element.value
+    assert as_if_cold * 1.01 < time < cold.time.value
+    assert cold.energy_with_element.value > power * time + 6000 * (time - 1800) * 0.99
+    assert cold.time_with_element.method == "heat_up_with_element_below"
+
+
+def test_heating_from_below_keeps_the_heat_balance() -> None:
+    """With constant heat the time is heat over power, wherever the element sits; halving the steps moves it little."""
+    cold = Cold(4.0e6, 283.15, 333.15)
+    time, energy = heated_from_below(cold, lambda _: (6000.0, 2000.0), 200.0, 3000.0, 0.0, 4.0e6 * 50 / 5800)
+    assert time == pytest.approx(4.0e6 * 50 / 8800, rel=1e-9)
+    assert energy == pytest.approx(5000.0 * time, rel=1e-9)
+
+    def worse(drawn: float) -> tuple[float, float]:
+        return 6000.0 - 60.0 * (drawn - 283.15), 2000.0 + 10.0 * (drawn - 283.15)
+
+    fine, coarse = (heated_from_below(cold, worse, 200.0, 3000.0, 0.0, longest)[0] for longest in (2.0e4, 4.0e4))
+    assert fine == pytest.approx(coarse, rel=0.005)
+    assert fine > time
+    with pytest.raises(NotCalculatedError, match="no more heat"):
+        heated_from_below(cold, lambda _: (100.0, 50.0), 200.0, 3000.0, 0.0, 1e4)
 
 
 def test_losses_lengthen_it(written: Written) -> None:
