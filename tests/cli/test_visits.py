@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 import json
 import re
+import shutil
 from pathlib import Path
 
 import pytest
@@ -48,7 +49,8 @@ def test_a_plant_that_misses_its_guarantee_leaves_with_one(commission: Run, exam
     )
     visit = tmp_path / "poor.yaml"
     visit.write_text(text.replace("2026-05-14T", "2026-05-15T"), encoding="utf-8")
-    (tmp_path / "cold-room-log-2026-05-12-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    for evidence in (example_copy / "records" / "attachments" / TESTED.removesuffix(".yaml")).iterdir():
+        shutil.copy(evidence, tmp_path)
     done = commission("compare", example_copy, visit)
     assert done.returncode == 1, done.stdout + done.stderr
     assert "not conforming" in done.stdout
@@ -70,7 +72,8 @@ def test_filing_writes_once_and_lists_the_digest(commission: Run, example_copy: 
     text = re.sub(r"\nitem_updates:.*?(?=\n\w)", "", text, flags=re.DOTALL)
     visit = tmp_path / "june.yaml"
     visit.write_text(text, encoding="utf-8")
-    (tmp_path / "cold-room-log-2026-05-12-to-14.csv").write_text("time,room\n", encoding="utf-8")
+    for evidence in (example_copy / "records" / "attachments" / TESTED.removesuffix(".yaml")).iterdir():
+        shutil.copy(evidence, tmp_path)
     done = commission("record", example_copy, visit)
     assert done.returncode == 0, done.stderr
     filed = Path(done.stdout.strip())

@@ -30,6 +30,6 @@ def test_a_long_item_is_named_by_its_verdict_or_its_line(
     item = OpenItem(
         1, "store", what, raised_by, "2026-05-14-store-visit", dt.date(2026, 5, 14), line="condensing_temperature"
     )
-    archive = Archive(RecordsFolder((), (), ()), (item,), {}, {}, ())
+    archive = Archive(RecordsFolder((), (), ()), (item,), {}, {}, (), {})
     (line,) = open_lines(SimpleNamespace(systems=()), archive)  # type: ignore[arg-type]  # only its systems are asked
     assert line.what == head
