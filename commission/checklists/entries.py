@@ -35,11 +35,14 @@ class MustRead(Entry):
 
 
 class Move(Entry):
-    """Do this item in another stage where a condition holds: order follows hazard."""
+    """Do this item in another stage, always or where a condition holds: order follows hazard, ids stay as filed."""
 
     to: str = Field(description="id of the stage")
-    when: str = Field(description="condition, an expression")
-    after: str | None = Field(None, description="id of the item it then follows; without it, at the end of the stage")
+    when: str | None = Field(None, description="condition, an expression; without it, always")
+    after: str | None = Field(
+        None,
+        description="id of the item it then follows, or of the last before it that applies; without it, at the end",
+    )
 
 
 class ItemEntry(Entry):

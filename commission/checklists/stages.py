@@ -101,7 +101,7 @@ def stages(
             else:
                 placed[stage.id].append((item, note))
     for item, note in moved:
-        _insert(placed, item, note)
+        _insert(checked, placed, item, note)
     return tuple(
         Stage(
             stage.id,
@@ -138,17 +138,29 @@ def _applies(item: CheckedItem, facts: Facts) -> tuple[bool, str | None]:
 
 
 def _moves(item: CheckedItem, facts: Facts) -> bool:
-    if item.move_when is None:
+    if item.entry.move is None:
         return False
+    if item.move_when is None:
+        return True
     return evaluate(item.move_when, facts.lookup, facts.loaded.barometric_pressure).content is True
 
 
-def _insert(placed: dict[str, list[tuple[CheckedItem, str | None]]], item: CheckedItem, note: str | None) -> None:
+def _insert(
+    checked: Sequence[CheckedStage],
+    placed: dict[str, list[tuple[CheckedItem, str | None]]],
+    item: CheckedItem,
+    note: str | None,
+) -> None:
+    """Put a moved item behind the one it names; where that does not apply, behind the last before it that does."""
     move = item.entry.move
     assert move is not None
     there = placed[move.to]
-    index = next((i for i, (x, _) in enumerate(there) if x.entry.id == move.after), len(there) - 1)
-    there.insert(index + 1, (item, note))
+    index = len(there)
+    if move.after is not None:
+        order = [x.entry.id for stage in checked if stage.id == move.to for x in stage.items]
+        before = {*order[: order.index(move.after) + 1], move.after}
+        index = max((i + 1 for i, (x, _) in enumerate(there) if x.entry.id in before), default=0)
+    there.insert(index, (item, note))
 
 
 def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
