@@ -1,5 +1,6 @@
 """What was promised, what is expected, what was read: uncertainty, decision, frozen sheets, verdicts."""
 
+from commission.acceptance.air_route import air_side
 from commission.acceptance.budget import Budget, Component, Measured, combine, propagate, spread_of
 from commission.acceptance.capability import Capability, GuaranteeCapability, ReadingCapability, capability
 from commission.acceptance.changes import Change, apply_change, smallest_change
@@ -15,7 +16,6 @@ from commission.acceptance.judgement import GuaranteeVerdict, Judgement, Mode, j
 from commission.acceptance.routes import (
     Refusal,
     RouteResult,
-    air_side,
     closure,
     compressor_heat_balance,
     liquid_side,

@@ -17,6 +17,7 @@ DIRECT = (
         for side in ("source", "sink")
         for what in ("inlet_temperature", "outlet_temperature", "wet_bulb", "relative_humidity", "flow")
     ),
+    "heat_source_outlet_wet_bulb",
     "suction_pressure",
     "discharge_pressure",
     "power_input",

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from functools import partial
 from typing import TYPE_CHECKING
 
+from commission.acceptance.air_route import air_side
 from commission.acceptance.budget import Measured
 from commission.acceptance.closure import Closure, closures
 from commission.acceptance.conditions import day_condition, missing_temperature
@@ -22,7 +23,6 @@ from commission.acceptance.routes import (
     Route,
     RouteResult,
     Side,
-    air_side,
     compressor_heat_balance,
     compressor_power,
     heat_meter,

@@ -259,7 +259,7 @@ def _route_instruments(
     keys = [*_ROUTE_READINGS[route], *(k for k in at if NOMENCLATURE[k].kind is Kind.TEMPERATURE)]
     if route in ("liquid side", "air side"):
         side = "source" if terms.quantity.startswith("cooling") else "sink"
-        keys += [f"heat_{side}_outlet_temperature", f"heat_{side}_flow"]
+        keys += [f"heat_{side}_{what}" for what in ("outlet_temperature", "outlet_wet_bulb", "flow")]
     if terms.quantity.endswith("cop"):
         keys.append("power_input")
     names = []

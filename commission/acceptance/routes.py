@@ -1,8 +1,8 @@
 """Ways to measure capacity and COP on site, each with its budget and its refusals.
 
 Compressor heat balance: Nordtest NT VVS 115 and NT VVS 116; P. Fahlén, field testing of refrigeration and heat pump
-equipment (the internal method). Liquid side and air side: flow times density times heat capacity times temperature
-change, the definition that EN 14511-3 and ISO 916 use.
+equipment (the internal method). Liquid side: flow times density times heat capacity times temperature change, the
+definition that EN 14511-3 and ISO 916 use. The air side is in `air_route`.
 """
 
 from __future__ import annotations
@@ -70,7 +70,7 @@ def library() -> Mapping[str, Any]:
     return data
 
 
-def _relative(route: str, part: str, name: str) -> Measured:
+def relative(route: str, part: str, name: str) -> Measured:
     """A factor of one with the relative uncertainty of the library."""
     entry = library()[route][part]
     component = Component(
@@ -98,7 +98,12 @@ def shell_share(
     return Measured("shell heat loss share", value, Budget((component,) if standard else ()))
 
 
-def _need(have: Mapping[str, Measured], *keys: str) -> None:
+def need(have: Mapping[str, Measured], *keys: str) -> None:
+    """Refuse where a reading is missing.
+
+    Raises:
+        NotCalculatedError: one of `keys` is not in `have`.
+    """
     lacking = [NOMENCLATURE[k].label.lower() for k in keys if k not in have]
     if lacking:
         raise NotCalculatedError(f"it needs a reading of {', '.join(lacking)}")
@@ -133,7 +138,7 @@ def compressor_heat_balance(
         raise NotCalculatedError(
             "a screw compressor's oil takes heat out of it: its power does not all go into the gas"
         )
-    _need(
+    need(
         readings, "suction_pressure", "suction_temperature", "discharge_pressure", "discharge_temperature",
         "liquid_temperature", "compressor_power",
     )  # fmt: skip
@@ -149,7 +154,7 @@ def compressor_heat_balance(
         "share": shell or shell_share(),
         "gain": line_gain or Measured("line gain", 0.0),
         "te": readings.get("evaporating_temperature", Measured("not read", math.nan)),
-        "method": _relative("compressor heat balance", "method", "limits of the compressor heat balance"),
+        "method": relative("compressor heat balance", "method", "limits of the compressor heat balance"),
     }
     heating = key == "heating_capacity"
 
@@ -217,7 +222,7 @@ def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) ->
     if medium.medium == "air":
         raise NotCalculatedError(f"the heat {side} is air")
     inlet, outlet, flow = (f"heat_{side}_{x}" for x in ("inlet_temperature", "outlet_temperature", "flow"))
-    _need(readings, inlet, outlet, flow)
+    need(readings, inlet, outlet, flow)
     fraction = Measured("mass fraction", medium.mass_fraction or 0.0)
     if medium.medium != "water":
         if medium.mass_fraction is None:
@@ -244,72 +249,6 @@ def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) ->
 def heat_meter(measured: Measured) -> RouteResult:
     """A capacity as a heat meter in the liquid shows it; its stated accuracy holds flow, pair and calculator."""
     return RouteResult("liquid side", explained(measured, "heat_meter_reading", {}))
-
-
-def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[str, Measured]) -> RouteResult:
-    """Heat taken from or given to air that neither loses nor gains water, from its flow and temperatures.
-
-    Q = V rho_dry(T_in) cp |T_in - T_out|, cp per kg of dry air. Refused where a coil may be wet: the outlet humidity
-    is not read, so the latent heat would be missing.
-
-    Raises:
-        NotCalculatedError: the medium is no air, a reading is missing, or the coil may be wet.
-    """
-    from commission.properties import moist_air
-
-    if medium.medium != "air":
-        raise NotCalculatedError(f"the heat {side} is {medium.medium}")
-    inlet, outlet, flow = (f"heat_{side}_{x}" for x in ("inlet_temperature", "outlet_temperature", "flow"))
-    _need(readings, inlet, outlet, flow)
-    humidity = readings.get(f"heat_{side}_relative_humidity")
-    if side == "source":
-        _refuse_wet_coil(readings, humidity, barometric)
-    inputs = {
-        "t_in": readings[inlet],
-        "t_out": readings[outlet],
-        "flow": readings[flow],
-        "humidity": humidity or _humidity_not_read(medium, side),
-        "method": _relative("air side", "method", "uneven air over the coil"),
-    }
-    sign = 1.0 if side == "source" else -1.0
-
-    def heat(t_in: float, t_out: float, flow: float, humidity: float, method: float) -> float:
-        # A humidity of 98 % with its doubt goes beyond saturation in the difference that gives the sensitivity.
-        air = moist_air(t_in, barometric, relative_humidity=min(max(humidity, 0.0), 1.0))
-        return sign * method * flow * air.density * air.cp * (t_in - t_out)
-
-    key = "cooling_capacity" if side == "source" else "heating_capacity"
-    more = {}
-    if humidity is None:
-        origin = "assumed: not read" if medium.relative_humidity is None else "plant.yaml"
-        more["humidity"] = Input(f"heat_{side}_relative_humidity", inputs["humidity"].value, Kind.RATIO, origin)
-    return RouteResult("air side", explained(propagate(key, heat, inputs), "air_side_capacity", inputs, **more))
-
-
-def _humidity_not_read(medium: Medium, side: Side) -> Measured:
-    """Humidity as the description states it, or anything: it moves the heat by about a hundredth."""
-    key = f"heat_{side}_relative_humidity"
-    stated = medium.relative_humidity
-    entry = library()["air side"]["humidity_not_read" if stated is None else "humidity_stated"]
-    component = Component(
-        "humidity not read", float(entry["standard"]), "rectangular", source=entry["source"], mark=entry["mark"],
-        cause=f"{key}: not read", of=key, remedy=entry["remedy"],
-    )  # fmt: skip
-    return Measured("relative humidity", float(entry["value"]) if stated is None else stated, Budget((component,)))
-
-
-def _refuse_wet_coil(readings: Mapping[str, Measured], humidity: Measured | None, barometric: float) -> None:
-    from commission.properties import moist_air
-
-    evaporating = readings.get("evaporating_temperature")
-    if humidity is None or evaporating is None:
-        raise NotCalculatedError("the coil may be wet, and the humidity of the air that leaves it is not read")
-    air = moist_air(readings["heat_source_inlet_temperature"].value, barometric, relative_humidity=humidity.value)
-    if air.dew_point > evaporating.value:
-        raise NotCalculatedError(
-            "the coil is wet (the dew point of the air lies above the evaporating temperature), and the humidity of "
-            "the air that leaves it is not read"
-        )
 
 
 def closure(cooling: Measured, heating: Measured, power: Measured, shell: Measured) -> Measured:

@@ -227,6 +227,7 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
         (
             "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature",
             "liquid_temperature", "heat_source_inlet_temperature", "heat_source_outlet_temperature",
+            "heat_source_outlet_wet_bulb",
             "heat_sink_inlet_temperature", "heat_sink_outlet_temperature", "gas_cooler_outlet_temperature",
             "heat_source_flow", "heat_sink_flow",
         ),

@@ -19,6 +19,7 @@ from commission.machine import (
 from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
 from commission.prediction.frost import no_frost_counted, with_defrosts
+from commission.properties import moist_air
 
 ABOVE_CRITICAL = "above the critical point there is no condensing temperature"
 
@@ -128,6 +129,9 @@ def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Foun
     found.values["heat_sink_outlet_temperature"] = sink_out
     found.values["heat_sink_temperature_change"] = sink_out - sink_in
     found.values["heat_source_outlet_temperature"] = source_out
+    if source.air is not None and facts.system.duty == "comfort_cooling":
+        air = moist_air(source_out, source.air.p, humidity_ratio=left.humidity_ratio)
+        found.values["heat_source_outlet_wet_bulb"] = air.wet_bulb
     found.values["heat_source_temperature_change"] = source_in - source_out
     for key in ("heat_source", "heat_sink"):
         known = "outlet" if (media.source if key == "heat_source" else media.sink).by_outlet else "inlet"

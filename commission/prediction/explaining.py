@@ -45,6 +45,7 @@ METHOD: Mapping[str, str] = {
     "heat_source_inlet_temperature": "medium_outlet",
     "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
+    "heat_source_outlet_wet_bulb": "wet_coil",
     "heat_sink_outlet_temperature": "medium_outlet",
     "heat_source_temperature_change": "medium_outlet",
     "heat_sink_temperature_change": "medium_outlet",
@@ -90,6 +91,7 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "sensible_heat_ratio": ("cooling_capacity", "evaporating_temperature"),
     "heat_sink_flow": ("heating_capacity",),
     "heat_source_outlet_temperature": ("cooling_capacity",),
+    "heat_source_outlet_wet_bulb": ("cooling_capacity", "sensible_heat_ratio"),
     "heat_sink_outlet_temperature": ("heating_capacity",),
     "heat_source_temperature_change": ("cooling_capacity",),
     "heat_sink_temperature_change": ("heating_capacity",),
@@ -112,6 +114,11 @@ _MEDIA: Mapping[str, tuple[str, ...]] = {
     "carnot_cop": ("heat_source_inlet_temperature", "heat_sink_inlet_temperature"),
     "sensible_heat_ratio": ("heat_source_inlet_temperature", "heat_source_relative_humidity", "heat_source_flow"),
     "heat_source_outlet_temperature": (
+        "heat_source_inlet_temperature",
+        "heat_source_flow",
+        "heat_source_relative_humidity",
+    ),
+    "heat_source_outlet_wet_bulb": (
         "heat_source_inlet_temperature",
         "heat_source_flow",
         "heat_source_relative_humidity",

@@ -51,6 +51,8 @@ def _medium(side: str, label: str, letter: str, where: str) -> list[Quantity]:
 
 _ALL: tuple[Quantity, ...] = (
     *_medium("source", "Heat source", "so", "medium that heat is taken from"),
+    Quantity("heat_source_outlet_wet_bulb", "T_so,wb,out", "Heat source outlet wet bulb", T,
+             "wet-bulb temperature of the air that heat is taken from where it leaves the exchanger, mixed"),
     *_medium("sink", "Heat sink", "si", "medium that heat is given to"),
     Quantity("compressor_speed", "n", "Compressor speed", Kind.SPEED, "rotational speed of the compressor shaft"),
     Quantity("evaporating_temperature", "T_e", "Evaporating temperature", T,

@@ -25,14 +25,9 @@ from commission.description.model import Medium
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel
 from commission.properties import liquid, refrigerant
-from tests.acceptance.visits import measured, visit
+from tests.acceptance.visits import measured, sure, visit
 
 AIR = 101_325.0
-
-
-def sure(**values: float) -> dict[str, Measured]:
-    """Readings without uncertainty."""
-    return {k: Measured(k, v) for k, v in values.items()}
 
 
 def states(**changes: float) -> dict[str, Measured]:
@@ -160,45 +155,6 @@ def test_sides_refuse_the_other_medium() -> None:
         liquid_side(Medium(medium="air"), "source", WATER)
     with pytest.raises(NotCalculatedError, match="heat sink is water"):
         air_side(Medium(medium="water"), "sink", AIR, WATER)
-
-
-def test_air_side_of_a_condenser_by_hand() -> None:
-    """2600 m3/h of air at 20 °C, 50 %: 1.19 kg/m3 times 1.02 kJ/kg K times 6 K is 5.26 kW (1 %); U is 10 % or more."""
-    readings = sure(
-        heat_sink_inlet_temperature=293.15, heat_sink_outlet_temperature=299.15, heat_sink_flow=2600 / 3600,
-        heat_sink_relative_humidity=0.5,
-    )  # fmt: skip
-    found = air_side(Medium(medium="air"), "sink", AIR, readings).measured
-    assert found.value == pytest.approx(2600 / 3600 * 1.19 * 1020.0 * 6.0, rel=0.01)
-    assert found.budget.expanded() / found.value >= 0.095
-
-
-def test_humidity_that_was_not_read_hardly_counts() -> None:
-    """Without a humidity any is possible; that is in the budget, and it is little."""
-    readings = sure(heat_sink_inlet_temperature=293.15, heat_sink_outlet_temperature=299.15, heat_sink_flow=2600 / 3600)
-    stated = Medium.model_validate({"medium": "air", "relative_humidity": "60 %"})
-    parts = []
-    for medium, origin in ((Medium(medium="air"), "assumed: not read"), (stated, "plant.yaml")):
-        found = air_side(medium, "sink", AIR, readings)
-        (part,) = [c for c in found.measured.budget.components if c.name == "humidity not read"]
-        parts.append(abs(part.value) / found.measured.value)
-        assert [i.origin for i in found.derived.explained.inputs if i.name == "heat_sink_relative_humidity"] == [origin]
-    assert 0.0 < parts[1] < parts[0] < 0.01
-
-
-def test_air_side_refuses_a_wet_coil() -> None:
-    """A coil below the dew point of its air takes water out: without the outlet humidity there is no capacity."""
-    readings = sure(
-        heat_source_inlet_temperature=300.15, heat_source_outlet_temperature=290.15, heat_source_flow=0.5,
-        heat_source_relative_humidity=0.5, evaporating_temperature=280.15,
-    )  # fmt: skip
-    with pytest.raises(NotCalculatedError, match="the coil is wet"):
-        air_side(Medium(medium="air"), "source", AIR, readings)
-    dry = {**readings, "heat_source_relative_humidity": Measured("heat_source_relative_humidity", 0.2)}
-    assert air_side(Medium(medium="air"), "source", AIR, dry).measured.value > 0.0
-    del dry["heat_source_relative_humidity"]
-    with pytest.raises(NotCalculatedError, match="may be wet"):
-        air_side(Medium(medium="air"), "source", AIR, dry)
 
 
 def test_two_routes_close(chiller_model: SystemModel) -> None:

@@ -36,3 +36,8 @@ def visit(
 def measured(loaded: LoadedPlant, readings: list[Reading]) -> dict[str, Measured]:
     """Readings with their budgets."""
     return {r.key: measure(r, loaded.plant.instruments, loaded.barometric_pressure) for r in readings}
+
+
+def sure(**values: float) -> dict[str, Measured]:
+    """Readings without uncertainty."""
+    return {k: Measured(k, v) for k, v in values.items()}
