@@ -103,6 +103,7 @@ def live_data(
         "until": {n: i.calibrated_until.isoformat() for n, i in instruments.items() if i.calibrated_until},
         "sheets": sheets,
         "steady": _steady(data),
+        "air": _bulbs(plan),
         "liquid": {side: _liquid(data, side) for side in ("source", "sink")},
         "saturation": saturation_rows(data.model.refrigerant) if data.model is not None else None,
         "expected": expected,
@@ -155,6 +156,19 @@ def saturation_rows(refrigerant: Refrigerant) -> dict[str, Any]:
         rows["dew"].append(round(dew, 4))
         rows["bubble"].append(round(bubble, 4))
     return {"first": first, "step": step, **rows}
+
+
+def _bulbs(plan: LivePlan) -> dict[str, Any] | None:
+    """What turns dry and wet bulb into the humidity that is a condition; None where no wet bulb is read."""
+    from commission.acceptance.conditions import DRY, HUMIDITY, WET
+    from commission.properties.psychrometrics import ICE, MASS_RATIO, TRIPLE_POINT, WATER
+
+    if HUMIDITY not in plan.conditions or WET not in plan.readings:
+        return None
+    return {
+        "dry": DRY, "wet": WET, "humidity": HUMIDITY, "ice": ICE, "water": WATER, "triple": TRIPLE_POINT,
+        "massRatio": MASS_RATIO,
+    }  # fmt: skip
 
 
 def _liquid(data: SystemData, side: str) -> dict[str, Any] | None:

@@ -21,7 +21,7 @@ from commission.quantities import NOMENCLATURE
 if TYPE_CHECKING:
     from commission.prediction import SystemModel
 
-SCRIPTS = ("decision.js", "decision_vectors.js", "live_table.js", "live_export.js", "live_sheet.js")
+SCRIPTS = ("decision.js", "decision_vectors.js", "live_air.js", "live_table.js", "live_export.js", "live_sheet.js")
 TITLE = "Live day sheet"
 
 

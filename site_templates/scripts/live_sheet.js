@@ -4,6 +4,7 @@
   var data = JSON.parse(document.getElementById("live-data").textContent);
   var form = document.getElementById("live");
   var table = commissionLiveTable(data);
+  var air = data.air ? commissionLiveAir(data.air) : null;
   var store = "commission.live." + data.plant + "." + data.system;
   var fields = Array.prototype.slice.call(form.querySelectorAll("[data-field]"));
   var COPS = ["cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop"];
@@ -70,6 +71,12 @@
       found[key] = shown === null || isNaN(shown) ? null : toSi(key, shown);
     });
     return found;
+  }
+  // The humidity that follows from a wet bulb, where none was typed; null where there is nothing to follow from.
+  function fromBulbs(have, read) {
+    var of = data.air;
+    if (!of || have[of.humidity] !== null || have[of.dry] === null || read[of.wet] === undefined) { return null; }
+    return air.humidity(have[of.dry], read[of.wet], barometer());
   }
   function readings() {
     var found = {};
@@ -146,7 +153,7 @@
     return { parts: parts, outcome: outcome };
   }
 
-  function sayCondition(expectation) {
+  function sayCondition(expectation, humidity) {
     var names = expectation.keys ? expectation.keys.map(small).join(", ") : "", parts = [];
     if (expectation.why === "lacking") {
       var speed = expectation.keys.length === 1 && expectation.keys[0] === "compressor_speed";
@@ -162,6 +169,9 @@
       if (expectation.missing.length) { words += " Not known and taken as designed: " + expectation.missing.map(small).join(", ") + "."; }
       parts.push(element("p", "", words));
     }
+    if (humidity !== null) {
+      parts.push(element("p", "", label(data.air.humidity) + " " + show(data.air.humidity, humidity) + " " + kind(data.air.humidity).shown + ", from the wet bulb."));
+    }
     fill(by("live-condition"), parts);
   }
 
@@ -176,9 +186,12 @@
 
   function update() {
     checkNumbers();
-    var have = conditions(), read = readings(), expectation = table.expect(have);
+    var have = conditions(), read = readings(), humidity = fromBulbs(have, read);
+    if (humidity !== null) { have[data.air.humidity] = humidity; }
+    var expectation = table.expect(have);
     var still = steadiness(), changed = changedInstruments(), test = mode() === "test";
-    var conditionChanged = changed.some(function (key) { return data.conditions.indexOf(key) >= 0; });
+    // Bands are those of the instruments that the page names: with others, the record is judged when it is filed.
+    var conditionChanged = humidity !== null || changed.some(function (key) { return data.conditions.indexOf(key) >= 0; });
     var state = {
       test: test, steady: still.steady,
       other: function (key) { return conditionChanged || [key].concat(NEEDS[key] || []).some(function (k) { return changed.indexOf(k) >= 0; }); }
@@ -197,7 +210,7 @@
       count.later += said.outcome === "edge" || said.outcome === "filed" ? 1 : 0;
       if (said.outcome === "outside") { count.outside.push(label(key)); }
     });
-    sayCondition(expectation);
+    sayCondition(expectation, humidity);
     sayBarometer();
     by("live-steady").textContent = still.text;
     by("live-mode").textContent = test

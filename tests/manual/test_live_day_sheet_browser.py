@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import random
 import shutil
 from collections.abc import Callable, Mapping
 from pathlib import Path
@@ -13,6 +14,9 @@ from click.testing import CliRunner
 
 from commission.cli.compare import command as compare
 from commission.description import LoadedPlant, load_plant
+from commission.manual.where import templates_folder
+from commission.properties import moist_air
+from commission.properties.psychrometrics import ICE, MASS_RATIO, TRIPLE_POINT, WATER
 from commission.quantities import NOMENCLATURE, Display
 from tests.manual.live_sheets import heard, outcomes, plant_of, record_text, said, type_in, without_model, write_sheet
 
@@ -27,6 +31,7 @@ READ = {
     "v-suction_temperature": "0.5", "v-discharge_temperature": "66", "v-liquid_temperature": "33.0",
     "v-power_input": "1.45",
 }  # fmt: skip
+HUMIDITY = "heat_source_relative_humidity"
 BY_REFRIGERANT = {"cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop"}
 
 
@@ -223,6 +228,47 @@ def test_not_known_is_an_answer(look: Look, loaded: LoadedPlant, tmp_path: Path)
     opened.check("[data-field='unknown-compressor_speed']")
     assert "inferred from the power" in opened.inner_text("#live-condition")
     assert "Not known: " in record_text(opened)
+
+
+def test_a_wet_bulb_stands_for_the_humidity(
+    look: Look, loaded: LoadedPlant, example_folder: Path, tmp_path: Path
+) -> None:
+    """A psychrometer's wet bulb gives the humidity that `compare` works out and what is expected there; bands are those
+    of the humidity probe, so that the record is judged when it is filed. A humidity that is typed goes first."""
+    opened = look().new_page()
+    opened.goto(write_sheet(plant_of(loaded, "dining-hall"), tmp_path).as_uri())
+    type_in(opened, {
+        **VISIT, "v-heat_source_inlet_temperature": "26.4", "v-heat_sink_inlet_temperature": "29",
+        "v-compressor_speed": "3600", "v-heat_source_wet_bulb": "20.4", "v-suction_pressure": "9.4",
+    })  # fmt: skip
+    assert "from the wet bulb" in opened.inner_text("#live-condition")
+    judged = compared(example_folder, record_text(opened), tmp_path)
+    humidity = shown(loaded, HUMIDITY, judged["conditions"][HUMIDITY]["value"])
+    assert f" {humidity}, from the wet bulb" in opened.inner_text("#live-condition")
+    pressure = shown(loaded, "suction_pressure", judged["expected"]["suction_pressure"]["value"])
+    expected = [float(text.split()[0]) for text in (said(opened, "suction_pressure")[0], pressure)]
+    assert expected[0] == pytest.approx(expected[1], abs=0.05)
+    assert outcomes(opened)["suction_pressure"] == "filed"
+    type_in(opened, {f"v-{HUMIDITY}": "38"})
+    assert "from the wet bulb" not in opened.inner_text("#live-condition")
+    assert float(said(opened, "suction_pressure")[0].split()[0]) < expected[0] - 0.15
+
+
+def test_humidity_in_the_browser_is_that_of_the_package(look: Look) -> None:
+    """The script's humidity of dry and wet bulb is that of `moist_air` from -20 to 45 °C, iced wicks too, at two
+    altitudes; where no air can have them it says so."""
+    opened = look().new_page()
+    opened.add_script_tag(path=templates_folder() / "scripts" / "live_air.js")
+    air = {"ice": ICE, "water": WATER, "triple": TRIPLE_POINT, "massRatio": MASS_RATIO}
+    chance = random.Random(18)
+    for pressure in (101_325.0, 79_500.0):
+        for _ in range(40):
+            given = moist_air(chance.uniform(253.0, 318.0), pressure, relative_humidity=chance.uniform(0.05, 1.0))
+            asked = [air, given.T, given.wet_bulb, pressure]
+            got = opened.evaluate("a => commissionLiveAir(a[0]).humidity(a[1], a[2], a[3])", asked)
+            assert got == pytest.approx(given.relative_humidity, abs=1e-6)
+    for dry, wet in ((293.15, 294.15), (303.15, 280.15)):
+        assert opened.evaluate("a => commissionLiveAir(a[0]).humidity(a[1], a[2], 101325)", [air, dry, wet]) is None
 
 
 def test_us_units_and_gauge_pressures(look: Look, example_folder: Path, tmp_path: Path) -> None:
