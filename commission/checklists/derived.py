@@ -55,6 +55,20 @@ def _tower(facts: Facts) -> bool | None:
     return None if system.heat_sink.medium == "water" and system.duty == "liquid_cooling" else False
 
 
+def _charged(facts: Facts) -> bool:
+    """Refrigerant is in the unit when it comes. Not stated: the outdoor unit of an air conditioner is charged in the
+    factory, any other unit that is joined on site comes empty (common practice, no source)."""
+    system = facts.system
+    if system.factory_charge is not None:
+        return system.factory_charge > 0
+    return system.sealed or system.duty == "comfort_cooling"
+
+
+def _extra_charge(facts: Facts) -> float | None:
+    whole, brought = facts.system.charge, facts.system.factory_charge
+    return None if whole is None or brought is None else whole - brought
+
+
 def _three_phase(facts: Facts) -> bool | None:
     phases = facts.system.nameplate.phases
     return None if phases is None else phases == "3"
@@ -186,6 +200,8 @@ DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "curve.mildest_outdoor": _curve("mildest", "outdoor"),
         "curve.mildest_flow": _curve("mildest", "flow"),
         "piped.on_site": lambda f, _: not f.system.sealed,
+        "unit.charged": lambda f, _: _charged(f),
+        "unit.extra_charge": lambda f, _: _extra_charge(f),
         "drive.three_phase": lambda f, _: _three_phase(f),
         "rotation.matters": lambda f, _: _rotation(f),
     }

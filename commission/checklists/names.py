@@ -68,6 +68,8 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "sink.freezing_point": (Kind.TEMPERATURE, "where the first ice forms in the liquid that heat is given to", ()),
         "source.outdoors": ("yes/no", "heat is taken from outdoor air", ()),
         "piped.on_site": ("yes/no", "refrigerant pipes are joined on site: not factory sealed", ()),
+        "unit.charged": ("yes/no", "the unit comes with refrigerant in it: sealed, or behind shut service valves", ()),
+        "unit.extra_charge": (Kind.MASS, "refrigerant added on site to what comes in the unit (factory_charge)", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),
         "rotation.matters": (
             "yes/no",

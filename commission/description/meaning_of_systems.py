@@ -27,6 +27,17 @@ def _refrigerant(looked: Looked, at: KeyPath, system: System) -> Iterator[Proble
         yield looked.positions.problem(path, first.message, allowed=first.allowed, nearest=first.nearest)
 
 
+def _factory_charge(looked: Looked, at: KeyPath, system: System) -> Iterator[Problem]:
+    """A part of the charge, of a unit whose pipes are joined on site."""
+    brought, path = system.factory_charge, (*at, "factory_charge")
+    if brought is None:
+        return
+    if system.sealed:
+        yield looked.positions.problem(path, "a factory-sealed unit brings its whole charge; write charge alone")
+    elif system.charge is not None and brought > system.charge:
+        yield looked.positions.problem(path, "the unit cannot bring more than the charge of the system")
+
+
 def _media(looked: Looked, at: KeyPath, system: System) -> Iterator[Problem]:
     """Duty and media belong together."""
     source, sink = system.heat_source.medium, system.heat_sink.medium
@@ -229,6 +240,7 @@ def _assumptions(looked: Looked, at: KeyPath, system: System) -> Iterator[Proble
 
 CHECKS_OF_A_SYSTEM: tuple[CheckOfASystem, ...] = (
     _refrigerant,
+    _factory_charge,
     _media,
     _spaces,
     _compressor,

@@ -36,6 +36,11 @@ def ids(listed: tuple[Item, ...]) -> list[str]:
     return [item.id for item in listed]
 
 
+def item_of(listed: tuple[Item, ...], name: str) -> Item:
+    """The item of an id."""
+    return next(item for item in listed if item.id == name)
+
+
 def after(listed: tuple[Item, ...], first: str, later: Iterable[str]) -> list[str]:
     """Those of `later` that stand on a list, but not behind `first`."""
     order = ids(listed)
@@ -66,3 +71,34 @@ def test_nothing_is_switched_on_before_the_electricians_report(listed: tuple[Ite
     """Earth, insulation and earth-fault protection are proved before a heater, fan or pump runs (IEC 60364-6)."""
     assert "electrical.report" in ids(listed)
     assert not after(listed, "electrical.report", POWERED)
+
+
+PIPES_PROVED = ("strength.hold", "strength.end-pressure", "evacuation.level", "evacuation.rise")
+
+
+def test_refrigerant_meets_a_circuit_that_is_tight_and_dry(listed: tuple[Item, ...]) -> None:
+    """The cylinder or the valves of a unit that comes charged are opened behind pressure test and vacuum, and joints
+    that a unit has filled are searched before more is weighed in."""
+    order = ids(listed)
+    for opened in ("charging.open-valves", "charging.cylinder"):
+        if opened in order:
+            assert all(order.index(name) < order.index(opened) for name in PIPES_PROVED if name in order)
+    if "charging.open-valves" in order:
+        assert order[order.index("charging.open-valves") + 1] == "charging.leak-search"
+        assert not after(listed, "charging.leak-search", ("charging.weigh", "charging.foreign-gas"))
+    elif "charging.weigh" in order:
+        assert not after(listed, "charging.weigh", ("charging.leak-search",))
+
+
+def test_no_list_takes_a_charged_unit_for_an_empty_one(listed: tuple[Item, ...]) -> None:
+    """Refrigerant that is there from the first day is sniffed for before the electrician's tests, where it burns."""
+    texts = " ".join(text for item in listed for text in (item.do, item.how, item.if_not, item.caution) if text)
+    order = ids(listed)
+    if "charging.open-valves" in order or "installation.sealed-charge" in order:
+        assert "before any refrigerant comes to the site" not in texts
+        assert "before the refrigerant comes to the site" not in texts
+        if item_of(listed, "electrical.report").caution:
+            assert order.index("installation.arrival") < order.index("electrical.report")
+    else:
+        assert "service valves" not in texts
+        assert "installation.arrival" not in order

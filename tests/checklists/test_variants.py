@@ -215,6 +215,37 @@ def test_oil_return_is_looked_at_on_every_circuit_that_is_piped(tmp_path: Path, 
     assert not [key for key in listed(tmp_path, "heat-pump") if "oil-return" in key]
 
 
+SPLIT = "    charge: 1.9 kg\n"
+
+
+@pytest.mark.parametrize(
+    ("brought", "there", "gone"),
+    [
+        ("1.6 kg", {"charging.open-valves", "charging.weigh", "charging.cylinder", "installation.arrival"}, set()),
+        ("1.9 kg", {"charging.open-valves", "charging.leak-search"}, {"charging.weigh", "charging.cylinder"}),
+        ("0 kg", {"charging.weigh", "charging.cylinder"}, {"charging.open-valves", "installation.arrival"}),
+    ],
+)
+def test_a_split_is_listed_by_the_charge_that_it_brings(
+    tmp_path: Path, brought: str, there: set[str], gone: set[str]
+) -> None:
+    """More is weighed in only where the lines take more; a unit that comes empty is charged like any other."""
+    found = listed(tmp_path, "split", (SPLIT, f"{SPLIT}    factory_charge: {brought}\n"))
+    assert there <= set(found)
+    assert not gone & set(found)
+    assert not [item.id for item in found.values() if item.note and item.id.startswith("charging.")]
+    if brought == "1.6 kg":
+        assert "0.30 kg" in found["charging.weigh"].do
+        assert "plate says what it brings, 1.60 kg" in (found["charging.weigh"].how or "")
+
+
+def test_a_split_that_does_not_say_its_charge_is_taken_as_charged(tmp_path: Path) -> None:
+    """The outdoor unit of an air conditioner comes charged (common practice, no source); what is not known is said."""
+    found = listed(tmp_path, "split")
+    assert {"charging.open-valves", "installation.arrival"} <= set(found)
+    assert "factory_charge" in (found["charging.weigh"].note or "")
+
+
 def test_dwellings_are_spared_what_the_law_asks_of_landlords(tmp_path: Path) -> None:
     """Samples for legionella are a duty where hot water is given to others (HSG274; DVGW W 551; national rules)."""
     home = ("  address: 1 Far Lane, Nowhere", "  address: 1 Far Lane, Nowhere\n  dwelling: yes")

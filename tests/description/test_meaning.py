@@ -52,6 +52,16 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
         "plant.climate.winter_dry_bulb",
         "winter cannot be warmer",
     ),
+    "sealed with a part of its charge": (
+        lambda d: one(d).update(sealed="yes", charge="1 kg", factory_charge="1 kg"),
+        "systems.one.factory_charge",
+        "brings its whole charge",
+    ),
+    "more from the factory than in all": (
+        lambda d: one(d).update(charge="1 kg", factory_charge="1.1 kg"),
+        "systems.one.factory_charge",
+        "cannot bring more",
+    ),
     "barometer in gauge": (
         lambda d: d["plant"].update(barometric_pressure="1 bar g"),
         "plant.barometric_pressure",

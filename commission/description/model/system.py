@@ -13,6 +13,7 @@ from commission.description.fields import (
     GaugeOrAbsolute,
     Identity,
     Mass,
+    PartOfMass,
     Voltage,
     Volume,
     YesNo,
@@ -90,6 +91,11 @@ class System(Part):
     refrigerant: str = Field(description="designation such as R-290")
     charge: Mass | None = Field(None, description="refrigerant charge")
     sealed: YesNo = Field(False, description="yes where the circuit is factory sealed, without service ports")
+    factory_charge: PartOfMass | None = Field(
+        None,
+        description="what a unit that is joined on site brings behind its shut service valves, 0 kg where it comes "
+        "empty; where nothing is written an air conditioner brings a charge, any other unit comes empty",
+    )
     installed_on: Date | None = Field(None, description="day the system was put on the site")
     spaces: SystemSpaces = Field(default_factory=SystemSpaces, description="which space holds which part")
     nameplate: Nameplate = Field(default_factory=Nameplate, description="what is stamped on the unit")
