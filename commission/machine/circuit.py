@@ -6,6 +6,7 @@ import math
 from abc import ABC, abstractmethod
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from commission.machine.compressor import Compression, Compressor
 from commission.machine.exchanger import Exchanger
@@ -96,8 +97,7 @@ class Parts:
     exchanger: float = 0.0
 
 
-@dataclass(frozen=True, slots=True)
-class Cycle:
+class Cycle(NamedTuple):
     """The cycle at given temperatures: states at evaporator outlet, suction port and condenser outlet, and heat that
     the exchanger between gas and liquid passes on, in J/kg."""
 
@@ -143,8 +143,7 @@ class Circuit(ABC):
     def outlet(self, evaporating: float, superheat: float) -> State:
         """State at the evaporator outlet, with `superheat` (K)."""
         if (evaporating, superheat) not in self._low:
-            pressure = self.dew(evaporating).p
-            self._low[evaporating, superheat] = self.machine.refrigerant.vapour(evaporating + superheat, pressure)
+            self._low[evaporating, superheat] = self.machine.refrigerant.superheated(self.dew(evaporating), superheat)
         return self._low[evaporating, superheat]
 
     def _exchanged(self, outlet: State, liquid: State) -> float:
@@ -162,7 +161,8 @@ class Circuit(ABC):
         suction = fluid.vapour_from_enthalpy(outlet.p, outlet.h + exchanged, outlet) if exchanged else outlet
         if line.pressure_loss or line.heating_share or line.warming:
             warmer = line.heating_share * (self.media.surroundings - suction.T) + line.warming
-            suction = fluid.vapour(suction.T + warmer, fluid.dew_pressure(evaporating - line.pressure_loss))
+            dew = fluid.dew(evaporating - line.pressure_loss)
+            suction = fluid.superheated(dew, suction.T + warmer - dew.T)
         if m.suction_regulator is not None and suction.p > m.suction_regulator:
             suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
         self._suctions[evaporating, outlet.h + exchanged] = suction

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from commission.errors import NotCalculatedError
 from commission.properties import Refrigerant, State
@@ -70,8 +71,7 @@ def _work_number(ratio: float, k: float) -> float:
     return math.expm1(share * math.log(ratio)) / share
 
 
-@dataclass(frozen=True, slots=True)
-class Compression:
+class Compression(NamedTuple):
     """What a compressor does between two states: flow kg/s, electric power W, heat lost by the shell W, enthalpy out.
 
     `isentropic_work` in J/kg; the efficiencies are those in force, levels included; the

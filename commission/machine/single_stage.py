@@ -227,7 +227,7 @@ class CondenserCircuit(Circuit):
     def liquid(self, condensing: float, subcooling: float) -> State:
         """Liquid below its bubble point by `subcooling` (K)."""
         fluid = self.machine.refrigerant
-        return fluid.liquid(self.bubble_temperature(condensing) - subcooling, fluid.dew_pressure(condensing))
+        return fluid.subcooled(fluid.bubble(self.bubble_temperature(condensing)), subcooling)
 
     def subcooled(self, condensing: float) -> float:
         """Subcooling in K of the liquid that a condenser at this dew point (K) gives."""

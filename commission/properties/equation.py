@@ -60,19 +60,30 @@ class Point:
         return self.cv + self.T * self.p_t**2 / (self.rho**2 * self.p_rho)
 
 
+class _Tools:
+    """An equation-of-state object with what is called on it, and how often it has been evaluated."""
+
+    __slots__ = ("by_T", "by_rho", "calls", "cv", "h", "inputs", "p", "s", "slope", "update")
+
+    def __init__(self, data: FluidData) -> None:
+        cp: Any = load()
+        state: Any = cp.AbstractState("HEOS", "&".join(data.fluids))
+        if len(data.fluids) > 1:
+            state.set_mole_fractions(list(data.mole_fractions))
+        state.specify_phase(cp.iphase_gas)  # any single phase: p, h, s follow from density alone
+        self.inputs = cp.DmassT_INPUTS
+        self.by_rho = (cp.iP, cp.iDmass, cp.iT)
+        self.by_T = (cp.iP, cp.iT, cp.iDmass)
+        self.update, self.slope = state.update, state.first_partial_deriv
+        self.p, self.h, self.s, self.cv = state.p, state.hmass, state.smass, state.cvmass
+        self.calls = 0
+
+
 class _PerThread(threading.local):
     """One equation-of-state object for each thread, since a shared one gives silently wrong values."""
 
     def __init__(self, data: FluidData) -> None:
-        self.cp: Any = load()
-        self.state: Any = self.cp.AbstractState("HEOS", "&".join(data.fluids))
-        if len(data.fluids) > 1:
-            self.state.set_mole_fractions(list(data.mole_fractions))
-        self.state.specify_phase(self.cp.iphase_gas)  # any single phase: p, h, s follow from density alone
-        self.inputs = self.cp.DmassT_INPUTS
-        self.by_rho = (self.cp.iP, self.cp.iDmass, self.cp.iT)
-        self.by_T = (self.cp.iP, self.cp.iT, self.cp.iDmass)
-        self.calls = 0
+        self.tools = _Tools(data)
 
 
 class Equation:
@@ -85,7 +96,7 @@ class Equation:
     @property
     def calls(self) -> int:
         """How often this thread has evaluated the equation of state."""
-        return self._local.calls
+        return self._local.tools.calls
 
     def at(self, rho: float, T: float) -> Point:
         """Everything at density `rho` (kg/m3) and temperature `T` (K); no range is checked here.
@@ -93,25 +104,18 @@ class Equation:
         Raises:
             PropertyRangeError: the equation gives no number there.
         """
-        local = self._local
-        local.calls += 1
-        state = local.state
+        tools = self._local.tools
+        tools.calls += 1
         try:
-            state.update(local.inputs, rho, T)
+            tools.update(tools.inputs, rho, T)
         except ValueError:
-            raise PropertyRangeError(
-                self.data.refrigerant, f"the equation of state gives no number at {rho:.6g} kg/m3 and {T:.6g} K"
-            ) from None
-        return Point(
-            rho,
-            T,
-            state.p(),
-            state.hmass() + self.data.h_offset,
-            state.smass() + self.data.s_offset,
-            state.first_partial_deriv(*local.by_rho),
-            state.first_partial_deriv(*local.by_T),
-            state.cvmass(),
-        )
+            raise self._no_number(rho, T) from None
+        return self._read(tools, rho, T, tools.p(), tools.slope(*tools.by_rho))
+
+    def _read(self, tools: _Tools, rho: float, T: float, p: float, p_rho: float) -> Point:
+        """What the equation gives where it has just been evaluated, with the pressure and slope read there."""
+        h, s = tools.h() + self.data.h_offset, tools.s() + self.data.s_offset
+        return Point(rho, T, p, h, s, p_rho, tools.slope(*tools.by_T), tools.cv())
 
     def density(self, T: float, p: float, start: float) -> Point:
         """The single-phase point at (T, p) reached from density `start`, which must lie on the right side.
@@ -119,14 +123,20 @@ class Equation:
         Raises:
             PropertyRangeError: no mechanically stable density (dp/drho > 0) found.
         """
-        rho = start
+        rho, tools = start, self._local.tools
+        update, inputs, pressure, slope, by_rho = tools.update, tools.inputs, tools.p, tools.slope, tools.by_rho
         for _ in range(MAX_STEPS):
-            point = self.at(rho, T)
-            if not point.p_rho > 0:
+            tools.calls += 1
+            try:
+                update(inputs, rho, T)
+            except ValueError:
+                raise self._no_number(rho, T) from None
+            here, p_rho = pressure(), slope(*by_rho)
+            if not p_rho > 0:
                 break
-            step = (p - point.p) / point.p_rho
+            step = (p - here) / p_rho
             if abs(step) < SMALL_STEP * rho:
-                return _corrected(point, step, 0.0)
+                return _corrected(self._read(tools, rho, T, here, p_rho), step, 0.0)
             rho += max(-0.5 * rho, min(0.5 * rho, step))
         raise self._lost(T, p)
 
@@ -142,15 +152,16 @@ class Equation:
         entropy = name == "s"
         for _ in range(MAX_STEPS):
             point = self.at(rho, T)
-            if not (point.p_rho > 0 or alike) or not point.cv > 0:
+            p_rho, p_t = point.p_rho, point.p_t
+            if not (p_rho > 0 or alike) or not point.cv > 0:
                 break
             if entropy:
                 miss, by_rho, by_T = value - point.s, point.s_rho, point.s_t
             else:
                 miss, by_rho, by_T = value - point.h, point.h_rho, point.h_t
-            determinant = point.p_rho * by_T - point.p_t * by_rho
-            d_rho = ((p - point.p) * by_T - point.p_t * miss) / determinant
-            d_T = (point.p_rho * miss - (p - point.p) * by_rho) / determinant
+            lack, determinant = p - point.p, p_rho * by_T - p_t * by_rho
+            d_rho = (lack * by_T - p_t * miss) / determinant
+            d_T = (p_rho * miss - lack * by_rho) / determinant
             if abs(d_rho) < SMALL_STEP * rho and abs(d_T) < SMALL_STEP * T:
                 return _corrected(point, d_rho, d_T)
             share = min(1.0, 0.4 * rho / max(abs(d_rho), 1e-300), 0.15 * T / max(abs(d_T), 1e-300))
@@ -183,6 +194,11 @@ class Equation:
                 break
         raise self._lost(T, p)
 
+    def _no_number(self, rho: float, T: float) -> PropertyRangeError:
+        return PropertyRangeError(
+            self.data.refrigerant, f"the equation of state gives no number at {rho:.6g} kg/m3 and {T:.6g} K"
+        )
+
     def _lost(self, T: float, p: float) -> PropertyRangeError:
         return PropertyRangeError(
             self.data.refrigerant, f"no stable single-phase state found near {celsius(T)} and {bar(p)}"
@@ -191,9 +207,11 @@ class Equation:
 
 def _corrected(point: Point, d_rho: float, d_T: float) -> Point:
     """The point after a last small step, values to first order."""
-    point.p += point.p_rho * d_rho + point.p_t * d_T
-    point.h += point.h_rho * d_rho + point.h_t * d_T
-    point.s += point.s_rho * d_rho + point.s_t * d_T
-    point.rho += d_rho
-    point.T += d_T
+    rho, T, p_rho, p_t, cv = point.rho, point.T, point.p_rho, point.p_t, point.cv
+    by_volume = p_t / rho
+    point.p += p_rho * d_rho + p_t * d_T
+    point.h += (p_rho - T * by_volume) / rho * d_rho + (cv + by_volume) * d_T
+    point.s += cv / T * d_T - by_volume / rho * d_rho
+    point.rho = rho + d_rho
+    point.T = T + d_T
     return point

@@ -24,18 +24,20 @@ PIECES = 1024  # of the range of a series; polynomials of degree 4 repeat a seri
 DEGREE = 4
 
 
+Piece = tuple[tuple[float, ...], tuple[float, ...]]
+
+
 @cache
 def _to_pieces(terms: int) -> Array:
     """What turns the coefficients of a series into those of its pieces: shape (PIECES, DEGREE + 1, terms).
 
-    On each piece stands a polynomial in the distance from its middle, lowest power first. Horner's rule on a few floats
-    is several times quicker at a single point than a series of numpy.
+    On each piece stands a polynomial in the distance from its middle in pieces, lowest power first. Horner's rule on a
+    few floats is several times quicker at a single point than a series of numpy.
     """
-    offsets = nodes(DEGREE + 1) / PIECES
-    powers = np.linalg.inv(np.vander(offsets * PIECES, DEGREE + 1, increasing=True))
-    powers *= (float(PIECES) ** np.arange(DEGREE + 1))[:, None]
+    within = nodes(DEGREE + 1)  # of a piece, whose half width is 1 / PIECES
+    powers = np.linalg.inv(np.vander(0.5 * within, DEGREE + 1, increasing=True))
     middles = (2.0 * np.arange(PIECES) + 1.0) / PIECES - 1.0
-    return np.asarray(powers @ chebyshev.chebvander(middles[:, None] + offsets, terms - 1))
+    return np.asarray(powers @ chebyshev.chebvander(middles[:, None] + within / PIECES, terms - 1))
 
 
 @dataclass(frozen=True)
@@ -72,22 +74,23 @@ class Line:
         return slope * math.sqrt(1.0 - T / self.T_critical) - offset
 
     @cached_property
-    def _pieces(self) -> tuple[Array, list[tuple[tuple[float, ...], tuple[float, ...]] | None]]:
-        """Coefficients on each piece; those of visited pieces as floats: of ln p, and of the other three in a row."""
+    def _pieces(self) -> tuple[float, float, Array, list[Piece | None]]:
+        """Slope and offset of the place of a temperature among the pieces, and the pieces' coefficients: all of them,
+        and those of visited pieces as floats, of ln p and of the other three in a row."""
+        (slope, offset), half = self._scale, PIECES / 2
         found = np.moveaxis(_to_pieces(self.coefficients.shape[1]) @ self.coefficients.T, 2, 1)
-        return found.reshape(PIECES, -1), [None] * PIECES
+        return half * slope, half * (1.0 - offset), found.reshape(PIECES, -1), [None] * PIECES
 
-    def _at(self, T: float) -> tuple[float, tuple[tuple[float, ...], tuple[float, ...]]]:
-        """Distance from the middle of the piece that holds `T`, and its coefficients."""
-        slope, offset = self._scale
-        x = min(1.0, max(-1.0, slope * math.sqrt(1.0 - T / self.T_critical) - offset))
-        n = min(PIECES - 1, int((x + 1.0) * (PIECES / 2)))
-        found, visited = self._pieces
+    def _at(self, T: float) -> tuple[float, Piece]:
+        """Distance from the middle of the piece that holds `T`, in pieces, and its coefficients."""
+        slope, offset, rows, visited = self._pieces
+        x = slope * math.sqrt(1.0 - T / self.T_critical) + offset
+        n = min(int(x), PIECES - 1)  # rounding at the ends only
         piece = visited[n]
         if piece is None:
-            row = found[n].tolist()
+            row = rows[n].tolist()
             piece = visited[n] = tuple(row[: DEGREE + 1]), tuple(row[DEGREE + 1 :])
-        return x - ((2 * n + 1) / PIECES - 1.0), piece
+        return x - n - 0.5, piece
 
     def ln_p(self, T: float) -> float:
         """ln p (Pa) at `T` (K), which the caller has checked to lie on the line."""
@@ -159,16 +162,17 @@ class Chebyshev1:
     coefficients: Array
 
     @cached_property
-    def _pieces(self) -> list[tuple[float, ...]]:
+    def _pieces(self) -> tuple[float, float, list[tuple[float, ...]]]:
+        scale = PIECES / (self.hi - self.lo)
         found = _to_pieces(len(self.coefficients)) @ self.coefficients
-        return [tuple(piece) for piece in found.tolist()]
+        return scale, scale * self.lo, [tuple(piece) for piece in found.tolist()]
 
     def __call__(self, ln_p: float) -> float:
-        x = (2.0 * math.sqrt(max(self.pivot - ln_p, 0.0)) - self.hi - self.lo) / (self.hi - self.lo)
-        x = min(1.0, max(-1.0, x))
-        n = min(PIECES - 1, int((x + 1.0) * (PIECES / 2)))
-        x -= (2 * n + 1) / PIECES - 1.0
-        a0, a1, a2, a3, a4 = self._pieces[n]
+        scale, start, pieces = self._pieces
+        x = scale * math.sqrt(max(self.pivot - ln_p, 0.0)) - start
+        n = min(max(int(x), 0), PIECES - 1)  # rounding at the ends only
+        a0, a1, a2, a3, a4 = pieces[n]
+        x -= n + 0.5
         return a0 + x * (a1 + x * (a2 + x * (a3 + x * a4)))
 
 

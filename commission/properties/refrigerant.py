@@ -24,6 +24,9 @@ if TYPE_CHECKING:
     from commission.properties.two_phase import WetIsobar
 
 
+LIKE = 0.02  # of its pressure: a state as near as that is a good start for another
+
+
 class Refrigerant(Saturation):
     """One refrigerant of the register. Make it with `refrigerant(name)`.
 
@@ -102,7 +105,36 @@ class Refrigerant(Saturation):
             self._beyond.need(p)
             self._beyond.need_vapour(T, p)
             return _state(self._beyond.at(T, p))
-        return _state(self._equation.density(T, p, self._vapour_start(T, p)))
+        if not p > 0:
+            raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
+        line = self.dew(min(T, self.T_high))
+        if self.T_high >= T and p > line.p * (1 + EDGE_PRESSURE):
+            raise self._not_vapour(T, p)
+        return _state(self._equation.density(T, p, self._gas_density(T, p, line)))
+
+    def superheated(self, dew: SaturationState, superheat: float) -> State:
+        """Vapour at the pressure of a dew point of this refrigerant, warmer by `superheat` (K).
+
+        Raises:
+            PropertyRangeError: colder than the dew point, or hotter than `T_max`.
+        """
+        T = dew.T + superheat
+        if not superheat >= -EDGE * dew.T:
+            raise self._not_vapour(T, dew.p)
+        self._need_gas_temperature(T)
+        return _state(self._equation.density(T, dew.p, self._gas_density(T, dew.p, dew)))
+
+    def subcooled(self, bubble: SaturationState, subcooling: float) -> State:
+        """Liquid at the pressure of a bubble point of this refrigerant, colder by `subcooling` (K).
+
+        Raises:
+            PropertyRangeError: warmer than the bubble point, or colder than `T_low`.
+        """
+        T = bubble.T - subcooling
+        self._need_temperature(T)
+        if not subcooling >= -EDGE * bubble.T:
+            raise self._not_liquid(T, bubble.p)
+        return _state(self._equation.density(T, bubble.p, math.exp(self._bubble.row(T)[3])))
 
     def liquid(self, T: float, p: float) -> State:
         """Subcooled liquid at `T` (K) and `p` (Pa).
@@ -117,9 +149,7 @@ class Refrigerant(Saturation):
         self._need_temperature(T)
         ln_p, _, _, ln_rho = self._bubble.row(T)
         if not p >= math.exp(ln_p) * (1 - EDGE):
-            raise PropertyRangeError(
-                self.name, f"{bar(p)} is below the bubble point {bar(math.exp(ln_p))} at {celsius(T)}: vapour forms"
-            )
+            raise self._not_liquid(T, p)
         if not p <= self.p_max:
             raise PropertyRangeError(self.name, f"{bar(p)} is above {bar(self.p_max)}, where the equation ends")
         return _state(self._equation.density(T, p, math.exp(ln_rho)))
@@ -149,26 +179,22 @@ class Refrigerant(Saturation):
             drho_dp=1 / point.p_rho,
         )
 
-    def _vapour_start(self, T: float, p: float) -> float:
+    def _gas_density(self, T: float, p: float, dew: SaturationState) -> float:
         """A density (kg/m3) to start from at (T, p): non-ideality in proportion to pressure, as by a second virial
-        coefficient, from the dew point at `T`, or beyond the line from its end.
-
-        Raises:
-            PropertyRangeError: (T, p) lies below the dew line, or there is no such pressure.
-        """
-        if not p > 0:
-            raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
-        T_line = min(T, self.T_high)
-        ln_p, _, _, ln_rho = self._dew.row(T_line)
-        p_line = math.exp(ln_p)
-        if self.T_high >= T and p > p_line * (1 + EDGE_PRESSURE):
-            dew = celsius(self._dew.temperature(p))
-            raise PropertyRangeError(
-                self.name, f"{celsius(T)} is below the dew point {dew} at {bar(p)}: not vapour alone"
-            )
-        gap = 1 - p_line * self.molar_mass / (GAS_CONSTANT * T_line * math.exp(ln_rho))
+        coefficient, from a dew point that is no warmer."""
+        gap = 1 - dew.p * self.molar_mass / (GAS_CONSTANT * dew.T * dew.rho)
         ideal = p * self.molar_mass / (GAS_CONSTANT * T)
-        return ideal / (1 - gap * min(1.0, p / p_line) * (T_line / T) ** 3)
+        return ideal / (1 - gap * min(1.0, p / dew.p) * (dew.T / T) ** 3)
+
+    def _not_vapour(self, T: float, p: float) -> PropertyRangeError:
+        dew = celsius(self._dew.temperature(p))
+        return PropertyRangeError(self.name, f"{celsius(T)} is below the dew point {dew} at {bar(p)}: not vapour alone")
+
+    def _not_liquid(self, T: float, p: float) -> PropertyRangeError:
+        bubble = bar(math.exp(self._bubble.ln_p(T)))
+        return PropertyRangeError(
+            self.name, f"{bar(p)} is below the bubble point {bubble} at {celsius(T)}: vapour forms"
+        )
 
     def _need_gas_temperature(self, T: float) -> None:
         if not self.T_low <= T <= self.T_max:
@@ -268,6 +294,10 @@ class Refrigerant(Saturation):
         """At `p` below the end of the dew line: vapour where `value` lies above the dew line, else wet if allowed."""
         if not p >= self.p_dew_low:
             raise PropertyRangeError(self.name, f"{bar(p)} is below {bar(self.p_dew_low)}, where the dew line begins")
+        if near is not None and near.quality is None and abs(p / near.p - 1) < LIKE:
+            like = self._vapour_like(near, p, name, value)
+            if like is not None:
+                return like
         T_dew = self._dew.temperature(p)
         _, h, s, ln_rho = self._dew.row(T_dew)
         at_dew = s if name == "s" else h
@@ -278,8 +308,6 @@ class Refrigerant(Saturation):
                     self.name, f"{value / 1e3:.3f} {unit} is below the dew line ({at_dew / 1e3:.3f} {unit}) at {bar(p)}"
                 )
             return self._wet_at_entropy(p, value, wet)
-        if near is not None and near.quality is None and abs(p / near.p - 1) < 0.02:
-            return _state(self._held(self._equation.solve(p, name, value, near.rho * p / near.p, near.T)))
         rho = math.exp(ln_rho)
         cp = self._equation.at(rho, T_dew).cp
         T = T_dew * math.exp((value - s) / cp) if name == "s" else T_dew + (value - h) / cp
@@ -287,6 +315,16 @@ class Refrigerant(Saturation):
         gap = 1 - p * self.molar_mass / (GAS_CONSTANT * T_dew * rho)
         start = p * self.molar_mass / (GAS_CONSTANT * T * (1 - gap * (T_dew / T) ** 3))
         return _state(self._held(self._equation.solve(p, name, value, start, T)))
+
+    def _vapour_like(self, near: State, p: float, name: str, value: float) -> State | None:
+        """Vapour with this value, from a neighbour; None where there is none, or none that would not condense."""
+        try:
+            point = self._equation.solve(p, name, value, near.rho * p / near.p, near.T)
+        except PropertyRangeError:
+            return None
+        if self.T_high >= point.T and p > self.dew_pressure(point.T) * (1 + EDGE_PRESSURE):
+            return None
+        return _state(self._held(point))
 
     def _wet_at_entropy(self, p: float, s: float, wet: str) -> State:
         isobar = self._wet(p)

@@ -1,12 +1,16 @@
-"""What the property room hands out: states as frozen data, SI throughout, enthalpy and entropy on the IIR reference."""
+"""What the property room hands out: states as frozen data, SI throughout, enthalpy and entropy on the IIR reference.
+
+States are made by the hundred in every balance; a named tuple is as frozen as a frozen dataclass and made in a third
+of the time.
+"""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 
-@dataclass(frozen=True, slots=True)
-class SaturationState:
+class SaturationState(NamedTuple):
     """A point of the dew or bubble line: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3)."""
 
     T: float
@@ -17,8 +21,7 @@ class SaturationState:
     warnings: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
-class State:
+class State(NamedTuple):
     """A state of the refrigerant: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3).
 
     `quality` is the mass fraction of vapour of a two-phase state and None in a single phase. `warnings` are sentences

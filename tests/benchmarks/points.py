@@ -7,7 +7,6 @@ from collections.abc import Callable
 
 from commission.machine import OperatingPoint
 from commission.properties import Refrigerant, refrigerant
-from commission.properties.equation import Point
 from tests.benchmarks.machines import REFRIGERANTS, machine, media
 from tests.benchmarks.plain import Answer, Plain, name_for
 from tests.benchmarks.timing import Row, interleaved, spent
@@ -16,35 +15,58 @@ PURE, BLEND, BARE = 15.0, 3000.0, 2.5
 SOURCE, SINK = 2.0, 28.0
 
 
-def places(fluid: Refrigerant, work: Callable[[], object]) -> list[tuple[float, float]]:
-    """The (density, temperature) of every call of the equation of state that `work` makes, in order."""
-    equation, found = fluid._equation, []
-    original = equation.at
+Call = tuple[float, float, bool]
+FEW, ALL = ("p", "slope"), ("p", "slope", "h", "s", "slope", "cv")
 
-    def watched(rho: float, T: float) -> Point:
-        found.append((rho, T))
-        return original(rho, T)
 
-    equation.at = watched  # type: ignore[method-assign]  # watched for one run only
+def calls_of(fluid: Refrigerant, work: Callable[[], object]) -> list[Call]:
+    """Every call of the equation of state that `work` makes, in order: density, temperature, and whether all values
+    were read there, or only the pressure and its slope as on the way to a density.
+
+    Raises:
+        AssertionError: something else was read, so that `bare` would not do the same.
+    """
+    tools, places, reads = fluid._equation._local.tools, list[tuple[float, float]](), list[list[str]]()
+    own = {name: getattr(tools, name) for name in ("update", *ALL)}
+
+    def update(inputs: int, rho: float, T: float) -> None:
+        places.append((rho, T))
+        reads.append([])
+        own["update"](inputs, rho, T)
+
+    def reader(name: str) -> Callable[..., float]:
+        def read(*by: int) -> float:
+            reads[-1].append(name)
+            value: float = own[name](*by)
+            return value
+
+        return read
+
     try:
+        for name in own:
+            setattr(tools, name, update if name == "update" else reader(name))
         work()
     finally:
-        del equation.at  # type: ignore[method-assign]  # the class's own again
-    return found
+        for name, original in own.items():
+            setattr(tools, name, original)
+    assert all(tuple(r) in (FEW, ALL) for r in reads), f"other values are read: {reads}"
+    return [(rho, T, tuple(r) == ALL) for (rho, T), r in zip(places, reads, strict=True)]
 
 
-def bare(fluid: Refrigerant, calls: list[tuple[float, float]]) -> None:
-    """The same updates at (density, temperature), with p, h, s, cv and two derivatives read, and nothing else."""
-    local = fluid._equation._local
-    state, inputs, by_rho, by_T = local.state, local.inputs, local.by_rho, local.by_T
-    for rho, T in calls:
-        state.update(inputs, rho, T)
-        state.p()
-        state.hmass()
-        state.smass()
-        state.cvmass()
-        state.first_partial_deriv(*by_rho)
-        state.first_partial_deriv(*by_T)
+def bare(fluid: Refrigerant, calls: list[Call]) -> None:
+    """The same updates with the same values read, p, h, s, cv and two derivatives at most, and nothing else."""
+    tools = fluid._equation._local.tools
+    update, inputs, by_rho, by_T = tools.update, tools.inputs, tools.by_rho, tools.by_T
+    p, h, s, cv, slope = tools.p, tools.h, tools.s, tools.cv, tools.slope
+    for rho, T, everything in calls:
+        update(inputs, rho, T)
+        p()
+        slope(*by_rho)
+        if everything:
+            h()
+            s()
+            slope(*by_T)
+            cv()
 
 
 def agree(ours: OperatingPoint, other: Answer, name: str) -> None:
@@ -96,7 +118,7 @@ def against_bare(name: str, repetitions: int) -> Row:
     ours, at = machine(fluid), media(SOURCE, SINK)
     ours.operate(at)
     before = fluid.calls
-    calls = places(fluid, lambda: ours.operate(at))
+    calls = calls_of(fluid, lambda: ours.operate(at))
     assert len(calls) == fluid.calls - before
     times = interleaved({"ours": (lambda: ours.operate(at), 10), "bare": (lambda: bare(fluid, calls), 10)}, repetitions)
     ratio = times["ours"] / times["bare"]

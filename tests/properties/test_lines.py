@@ -124,3 +124,29 @@ def test_a_fluid_without_a_file_is_made_in_memory(monkeypatch: pytest.MonkeyPatc
     monkeypatch.setattr(lines, "read", lambda _name: None)
     made = _make("R-600a")
     assert made.dew(280.0).p == pytest.approx(refrigerant("R-600a").dew(280.0).p, rel=1e-9)
+
+
+@pytest.mark.parametrize("name", ["R-290", "R-717", "R-454B"])
+def test_states_beside_a_line_are_those_at_temperature_and_pressure(name: str) -> None:
+    """Superheated from a dew point and subcooled from a bubble point are vapour and liquid there; nothing inside."""
+    r = refrigerant(name)
+    dew, bubble = r.dew(263.0), r.bubble(311.0)
+    for kelvin in (0.0, 4.0, 60.0):
+        gas, liquid = r.superheated(dew, kelvin), r.subcooled(bubble, kelvin)
+        assert gas[:5] == pytest.approx(r.vapour(dew.T + kelvin, dew.p)[:5], rel=1e-9)
+        assert liquid[:5] == pytest.approx(r.liquid(bubble.T - kelvin, bubble.p)[:5], rel=1e-7)
+    for inside in (-0.1, float("nan")):
+        with pytest.raises(PropertyRangeError):
+            r.superheated(dew, inside)
+        with pytest.raises(PropertyRangeError):
+            r.subcooled(bubble, inside)
+
+
+def test_a_neighbour_in_the_vapour_does_not_hide_that_compression_ends_wet() -> None:
+    """Steep compression of R-600a from its dew point ends wet, with its warning, whatever state it is started from."""
+    r = refrigerant("R-600a")
+    suction, p = r.dew(253.15), r.dew_pressure(318.15)
+    wet = r.isentropic_end(suction, p)
+    near = r.superheated(r.dew(318.15), 1.0)
+    assert wet.quality is not None
+    assert r.isentropic_end(suction, p, near) == wet
