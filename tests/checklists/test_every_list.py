@@ -102,3 +102,38 @@ def test_no_list_takes_a_charged_unit_for_an_empty_one(listed: tuple[Item, ...])
     else:
         assert "service valves" not in texts
         assert "installation.arrival" not in order
+
+
+RUNNING = ("first-start.", "live-trips.", "controls.", "trim.", "performance.", "season.")
+
+
+def test_nothing_makes_hot_water_before_people_are_safe_from_it(listed: tuple[Item, ...]) -> None:
+    """Outlets are shut to users before the machine or an element first runs, and every mixing valve is proved with the
+    first hot water, before any other trial heats the store (EN 1111; HSG274 part 2)."""
+    order = ids(listed)
+    running = [name for name in order if name.startswith(RUNNING)]
+    if "installation.unvented" not in order:
+        assert "first-start.mixing" not in order
+        return
+    assert not after(listed, "flows.outlets-shut", running)
+    assert not after(listed, "first-start.mixing", [name for name in running if not name.startswith("first-start.")])
+    assert "every mixing valve" in (item_of(listed, "controls.hygiene").hazard or "")
+
+
+def test_drinking_water_never_holds_glycol(listed: tuple[Item, ...]) -> None:
+    """A water heater's pipes hold drinking water; only a heating circuit may be filled against frost."""
+    heater = "flows.outlets-shut" in ids(listed)
+    for item in listed:
+        if item.id == "flows.frost-outdoors":
+            assert item.must_read is not None
+            assert ("or glycol" in item.must_read.text) is not heater
+            assert ("never glycol" in item.must_read.text) is heater
+
+
+def test_a_hygiene_heating_is_read_where_it_is_asked_for(listed: tuple[Item, ...], example_folder: Path) -> None:
+    """The hold by the coldest sensor, the bottom by the drain, the loop by its return: one value each."""
+    order = ids(listed)
+    wanted = ["controls.hygiene", "controls.hygiene-bottom", "controls.hygiene-return"]
+    assert [name for name in order if name.startswith("controls.hygiene")] in ([], wanted)
+    if wanted[0] in order and listed == _listed(example_folder, "shower-water"):
+        assert "30 min" in item_of(listed, wanted[0]).do

@@ -156,6 +156,9 @@ BEFORE = [
     ("installation.relief-outlet", "charging.weigh"),
     ("flows.store-filled", "controls.hygiene"),
     ("safety.store-cut-out", "controls.hygiene"),
+    ("flows.disinfected", "flows.outlets-shut"),
+    ("flows.outlets-shut", "first-start.current"),
+    ("controls.hygiene-bottom", "handover.legionella-first"),
 ]
 """Pairs whose order keeps people or the compressor whole."""
 
@@ -299,7 +302,7 @@ def test_a_list_holds_each_act_once(yard_stages: Stages, system_id: str) -> None
                 "charging.vapour-first",
                 "safety.relief-each-part",
                 "controls.hygiene",
-                "controls.mixing",
+                "first-start.mixing",
                 "installation.unvented",
                 "safety.store-cut-out",
                 "flows.store-filled",

@@ -249,10 +249,16 @@ def test_a_split_that_does_not_say_its_charge_is_taken_as_charged(tmp_path: Path
 def test_dwellings_are_spared_what_the_law_asks_of_landlords(tmp_path: Path) -> None:
     """Samples for legionella are a duty where hot water is given to others (HSG274; DVGW W 551; national rules)."""
     home = ("  address: 1 Far Lane, Nowhere", "  address: 1 Far Lane, Nowhere\n  dwelling: yes")
-    assert {"upkeep.legionella", "handover.legionella"} <= set(listed(tmp_path, "water-heater"))
+    duties = {"upkeep.legionella", "handover.legionella", "handover.legionella-first"}
+    let = listed(tmp_path, "water-heater")
+    assert duties <= set(let)
+    assert "disinfected" in let["flows.disinfected"].do
+    assert "legionella count" in says(let["flows.outlets-shut"])
     found = listed(tmp_path, "water-heater", home)
-    assert not {"upkeep.legionella", "handover.legionella"} & set(found)
-    assert {"controls.hygiene", "controls.mixing"} <= set(found)
+    assert not duties & set(found)
+    assert {"controls.hygiene", "first-start.mixing"} <= set(found)
+    assert "disinfected" not in found["flows.disinfected"].do
+    assert "legionella" not in says(found["flows.outlets-shut"])
 
 
 @pytest.mark.parametrize(
