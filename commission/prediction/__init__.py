@@ -1,7 +1,7 @@
 """A description becomes a fitted model; the model says what each gauge, probe and meter should read."""
 
-from commission.prediction.building import boundary
 from commission.prediction.conditions import ConditionAxis
+from commission.prediction.fans import boundary
 from commission.prediction.faults import FAULTS, Fault, with_fault
 from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Nominal, Prediction, SystemModel, fit

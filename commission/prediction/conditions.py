@@ -8,9 +8,10 @@ from dataclasses import dataclass
 from itertools import pairwise
 
 from commission.errors import InputError, Problem, nearest
-from commission.prediction.building import Plan, once_through
 from commission.prediction.facts import Facts
+from commission.prediction.plan import Plan
 from commission.prediction.rated import Case
+from commission.prediction.streams import once_through
 from commission.properties import moist_air
 from commission.quantities import NOMENCLATURE
 

@@ -16,9 +16,9 @@ from commission.machine import (
     entropic_mean,
     leaving_air,
 )
-from commission.prediction.building import Plan
 from commission.prediction.facts import Facts
 from commission.prediction.frost import no_frost_counted, with_defrosts
+from commission.prediction.plan import Plan
 from commission.properties import moist_air
 
 ABOVE_CRITICAL = "above the critical point there is no condensing temperature"

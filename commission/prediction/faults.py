@@ -11,10 +11,11 @@ from dataclasses import dataclass, replace
 
 from commission.errors import InputError, NotCalculatedError, Problem, nearest
 from commission.machine import Compressor, SingleStage, Transcritical
-from commission.prediction.building import Machine, Plan, media
 from commission.prediction.charge import with_charge
 from commission.prediction.guard import in_words
 from commission.prediction.model import SystemModel
+from commission.prediction.plan import Machine, Plan
+from commission.prediction.streams import media
 
 
 @dataclass(frozen=True, slots=True)

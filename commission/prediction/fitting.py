@@ -18,8 +18,9 @@ import numpy as np
 
 from commission.description import Assumption
 from commission.errors import NotCalculatedError
-from commission.prediction.building import Levels, Plan, build
+from commission.prediction.building import build
 from commission.prediction.facts import Facts, Used
+from commission.prediction.plan import Levels, Plan
 from commission.prediction.problem import Problem, prepare, restricted
 from commission.prediction.rated import MARGIN, Case, Datum, rated_of
 from commission.prediction.simulating import Seen, observed

@@ -9,7 +9,6 @@ from dataclasses import dataclass, field
 from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
 from commission.machine import OperatingPoint, StatePoint, solve
-from commission.prediction.building import Plan, media
 from commission.prediction.conditions import ConditionAxis, axes_of, complete, followers, with_weather_curve
 from commission.prediction.expected import TOO_NEAR, Found, beats_carnot, expected_values, frosts
 from commission.prediction.explaining import explain
@@ -18,8 +17,10 @@ from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, fros
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
 from commission.prediction.operation import told_of_operation
+from commission.prediction.plan import Plan
 from commission.prediction.rated import reference
 from commission.prediction.refusals import cannot_be, fitted, walk
+from commission.prediction.streams import media
 from commission.properties import Refrigerant
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 

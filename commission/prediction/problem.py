@@ -7,20 +7,9 @@ from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
 from commission.machine import SingleStage, Transcritical, conductance_for
-from commission.prediction.building import (
-    KELVIN,
-    SINK_HUMIDITY,
-    Levels,
-    Plan,
-    Rated,
-    air_share,
-    build,
-    media,
-    once_through,
-    stream,
-    superheat_setting,
-)
+from commission.prediction.building import air_share, build, superheat_setting
 from commission.prediction.facts import Facts
+from commission.prediction.plan import Levels, Plan, Rated
 from commission.prediction.rated import Case, Datum, cases_of, rated_of, reference, with_data
 from commission.prediction.ratings import (
     MEAN_BELOW_DEW,
@@ -32,6 +21,7 @@ from commission.prediction.ratings import (
     source_conductance,
     wetted_conductance,
 )
+from commission.prediction.streams import KELVIN, SINK_HUMIDITY, media, once_through, stream
 
 
 @dataclass(frozen=True)

@@ -8,18 +8,12 @@ from dataclasses import dataclass, replace
 from commission.description import Conditions, RatedPoint
 from commission.description.model import CondensingUnit
 from commission.errors import NotCalculatedError
-from commission.prediction.building import (
-    SINK_HUMIDITY,
-    Rated,
-    flow_for,
-    humidity,
-    once_through,
-    stream,
-)
 from commission.prediction.compressors import estimate
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
 from commission.prediction.frost import counts_defrosts
+from commission.prediction.plan import Rated
 from commission.prediction.ratings import MEAN_BELOW_DEW, rating_difference
+from commission.prediction.streams import SINK_HUMIDITY, flow_for, humidity, once_through, stream
 from commission.properties import moist_air
 
 MARGIN = 0.015

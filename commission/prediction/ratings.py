@@ -6,8 +6,9 @@ from collections.abc import Mapping
 
 from commission.errors import NotCalculatedError
 from commission.machine import Stream, between, coil_conductance, conductance_for, within_reach
-from commission.prediction.building import KELVIN, SINK_HUMIDITY, air_share, humidity, stream
+from commission.prediction.building import air_share
 from commission.prediction.facts import Facts
+from commission.prediction.streams import KELVIN, SINK_HUMIDITY, humidity, stream
 
 MEAN_BELOW_DEW = 0.35
 """Dew point less the mean along an evaporator, over the glide: liquid enters it with a quality of about 0.3."""

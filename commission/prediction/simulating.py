@@ -7,10 +7,11 @@ from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
 from commission.machine import Balance, Compression
-from commission.prediction.building import Plan, media
 from commission.prediction.facts import Facts
 from commission.prediction.frost import with_defrosts
+from commission.prediction.plan import Plan
 from commission.prediction.rated import Case
+from commission.prediction.streams import media
 
 
 @dataclass(frozen=True, slots=True)

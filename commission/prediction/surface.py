@@ -6,8 +6,8 @@ from collections.abc import Mapping, Sequence
 
 from commission.errors import InputError, NotCalculatedError, Problem
 from commission.machine import OperatingMap, SingleStage, operating_map
-from commission.prediction.building import media
 from commission.prediction.model import SystemModel
+from commission.prediction.streams import media
 
 
 def operating_surface(

@@ -10,7 +10,7 @@ import numpy as np
 
 from commission.description import Assumption
 from commission.errors import NotCalculatedError
-from commission.prediction.building import Levels, Plan
+from commission.prediction.plan import Levels, Plan
 from commission.prediction.problem import Problem, plan_of
 from commission.prediction.simulating import Seen, observed, simulate
 

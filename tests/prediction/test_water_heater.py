@@ -11,9 +11,9 @@ import pytest
 
 from commission.description import LoadedPlant, load_plant
 from commission.prediction import SystemModel, fit
-from commission.prediction.building import media
 from commission.prediction.conditions import complete
 from commission.prediction.expected import expected_values
+from commission.prediction.streams import media
 
 Written = Callable[[str], LoadedPlant]
 KELVIN = 273.15

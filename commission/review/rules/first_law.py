@@ -100,7 +100,7 @@ def medium_balance(facts: SystemFacts) -> Iterator[Remark]:
 
 def _sets_its_flow(facts: SystemFacts, lift: float) -> bool:
     """Hot water heated in one pass: the machine sets another flow at each point, the stated one is of its design."""
-    from commission.prediction.building import ONCE_THROUGH
+    from commission.prediction.streams import ONCE_THROUGH
 
     return facts.system.duty == "water_heating" and lift >= ONCE_THROUGH
 
