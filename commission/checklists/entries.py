@@ -43,6 +43,9 @@ class Move(Entry):
         None,
         description="id of the item it then follows, or of the last before it that applies; without it, at the end",
     )
+    before: str | None = Field(
+        None, description="in place of `after`: id of the item it then precedes, or of the next after it that applies"
+    )
 
 
 class ItemEntry(Entry):

@@ -179,34 +179,25 @@ def _moves(stages: Sequence[CheckedStage]) -> list[Problem]:
     """Every stage and item that a move names exists."""
     known = {s.id: [x.entry.id for x in s.items] for s in stages}
     problems = []
-    for stage in stages:
-        for item in stage.items:
-            move = item.entry.move
-            file, _, line = item.origin.partition(":")
-            row = int(line) if line.isdigit() else None
-            if move is not None and move.to not in known:
-                problems.append(
-                    Problem(
-                        "no stage has this id",
-                        file,
-                        row,
-                        path=item.entry.id,
-                        value=move.to,
-                        allowed=", ".join(known),
-                        nearest=nearest(move.to, known),
-                    )
-                )
-            elif move is not None and move.after is not None and move.after not in known[move.to]:
-                problems.append(
-                    Problem(
-                        f"no item of the stage {move.to} has this id",
-                        file,
-                        row,
-                        path=item.entry.id,
-                        value=move.after,
-                        nearest=nearest(move.after, known[move.to]),
-                    )
-                )
+    for item in (item for stage in stages for item in stage.items):
+        move = item.entry.move
+        if move is None:
+            continue
+        here = known.get(move.to, [])
+        wrong: list[tuple[str, str, Iterable[str]]] = []
+        if move.to not in known:
+            wrong.append(("no stage has this id", move.to, known))
+        elif move.after is not None and move.before is not None:
+            wrong.append(("a moved item stands behind another or before it, not both", move.before, ()))
+        else:
+            message = f"no item of the stage {move.to} has this id"
+            wrong += [(message, named, here) for named in (move.after, move.before) if named and named not in here]
+        file, _, line = item.origin.partition(":")
+        row = int(line) if line.isdigit() else None
+        problems += [
+            Problem(message, file, row, path=item.entry.id, value=value, nearest=nearest(value, among))
+            for message, value, among in wrong
+        ]
     return problems
 
 

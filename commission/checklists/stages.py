@@ -151,15 +151,18 @@ def _insert(
     item: CheckedItem,
     note: str | None,
 ) -> None:
-    """Put a moved item behind the one it names; where that does not apply, behind the last before it that does."""
+    """Put a moved item behind or before the one it names; where that does not apply, the next one that does."""
     move = item.entry.move
     assert move is not None
     there = placed[move.to]
+    order = [x.entry.id for stage in checked if stage.id == move.to for x in stage.items]
     index = len(there)
     if move.after is not None:
-        order = [x.entry.id for stage in checked if stage.id == move.to for x in stage.items]
-        before = {*order[: order.index(move.after) + 1], move.after}
-        index = max((i + 1 for i, (x, _) in enumerate(there) if x.entry.id in before), default=0)
+        earlier = {*order[: order.index(move.after) + 1]}
+        index = max((i + 1 for i, (x, _) in enumerate(there) if x.entry.id in earlier), default=0)
+    elif move.before is not None:
+        later = {*order[order.index(move.before) :]}
+        index = min((i for i, (x, _) in enumerate(there) if x.entry.id in later), default=index)
     there.insert(index, (item, note))
 
 

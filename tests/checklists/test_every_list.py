@@ -49,8 +49,7 @@ def after(listed: tuple[Item, ...], first: str, later: Iterable[str]) -> list[st
 
 
 POWERED = (
-    "installation.drain-heater",
-    "installation.door-frame",
+    "installation.room-heaters",
     "installation.relief-port",
     "installation.ventilation",
     "installation.emergency-light",
