@@ -89,7 +89,12 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.condensing_space": ("text", "name of the space of the condensing unit", ()),
         "words.indoor_spaces": ("text", "names of the indoor spaces that hold a part of the circuit", ()),
         "words.condition": ("text", "condition of the list in words", ()),
-        "words.instruments": ("text", "instruments of this system with serial and calibration", ()),
+        "words.instruments": (
+            "text",
+            "instruments that the work on this system needs, with serial and calibration",
+            (),
+        ),
+        "words.instruments_to_bring": ("text", "instruments that the work needs and nobody described", ()),
         "words.test_steps": ("text", "steps of the pressure test, whole circuit joined", ()),
         "words.limit_ladder": ("text", "pressures from low to high: expected, limit, relief, allowable", ()),
         "words.label": ("text", "text of the refrigerant label", ()),

@@ -6,8 +6,9 @@ from collections.abc import Callable, Mapping
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
+from commission.checklists.instruments import described, strength_gauge, to_bring
 from commission.errors import CommissionError
-from commission.quantities import NOMENCLATURE, Kind, Reference
+from commission.quantities import NOMENCLATURE, Kind
 from commission.safety import (
     charge_limits,
     fluid_of,
@@ -24,7 +25,7 @@ if TYPE_CHECKING:
 
 
 def _levels(facts: Facts) -> str | None:
-    shown = [f"{level.ppm:.0f} ppm {level.what} ({level.says})" for level in hazards(facts.substance).people]
+    shown = [f"{level.ppm:,.0f} ppm {level.what} ({level.says})" for level in hazards(facts.substance).people]
     return "; ".join(shown) or None
 
 
@@ -62,37 +63,6 @@ def _acts_first(facts: Facts) -> str | None:
     if least is not None and system.heat_sink.medium != "air":
         found.append(f"the flow switch at {display.text(least, Kind.VOLUME_FLOW)}")
     return " or ".join(found) or None
-
-
-GAUGE_REACH = 1.25
-"""A test gauge reads to at least this many times the test pressure (common practice, no source)."""
-
-
-def _strength_gauge(figure: str) -> Callable[[Facts, str], str | None]:
-    """Which gauge of the plant is good for a test pressure: the one with the smallest scale that reaches far enough."""
-
-    def find(facts: Facts, _: str) -> str | None:
-        pressure = facts.figures.get(figure)
-        if pressure is None:
-            return None
-        needed = (pressure.value - facts.loaded.barometric_pressure) * GAUGE_REACH
-        scales = []
-        for key, instrument in facts.loaded.plant.instruments.items():
-            scale = instrument.resolved
-            if instrument.measures != "pressure" or scale.range_high is None:
-                continue
-            gauge = scale.reference is Reference.GAUGE
-            reach = scale.range_high - (0.0 if gauge else facts.loaded.barometric_pressure)
-            if reach >= needed:
-                scales.append((reach, f"{key} ({instrument.serial or 'no serial stated'})"))
-        if scales:
-            return f"Of this plant's gauges take {min(scales)[1]}; shut off every one that ends lower."
-        wanted = facts.display.text(needed + facts.loaded.barometric_pressure, Kind.PRESSURE, 0)
-        return (
-            f"No gauge of this plant reaches far enough: bring one that reads to {wanted} or more, and shut off theirs."
-        )
-
-    return find
 
 
 def _flow_stages(facts: Facts) -> str | None:
@@ -140,21 +110,6 @@ def _short(facts: Facts, key: str) -> str:
     if key == "heat_source_inlet_temperature" and facts.system.duty in ("cold_storage", "comfort_cooling"):
         return "room"
     return NOMENCLATURE[key].label.lower()
-
-
-def _instruments(facts: Facts) -> str:
-    wanted = set(facts.system.measured_with.values())
-    listed = facts.loaded.plant.instruments
-    chosen = {key: item for key, item in listed.items() if key in wanted} or listed
-    texts = []
-    for key, item in chosen.items():
-        until = (
-            f"calibrated until {item.calibrated_until.isoformat()}"
-            if item.calibrated_until
-            else "no calibration stated"
-        )
-        texts.append(f"{key} ({item.serial or 'no serial stated'}, {until})")
-    return "; ".join(texts) or "none; without serial and calibration a report is void"
 
 
 def _steps(facts: Facts) -> str | None:
@@ -275,7 +230,8 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.condensing_space": lambda f, _: f.space_name("condensing_unit"),
         "words.indoor_spaces": lambda f, _: _indoor_spaces(f),
         "words.condition": lambda f, _: _condition(f),
-        "words.instruments": lambda f, _: _instruments(f),
+        "words.instruments": lambda f, _: described(f),
+        "words.instruments_to_bring": lambda f, _: to_bring(f),
         "words.test_steps": lambda f, _: _steps(f),
         "words.limit_ladder": lambda f, _: _ladder(f),
         "words.label": lambda f, _: _label(f),
@@ -286,8 +242,8 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.other_season": lambda f, _: _other_season(f),
         "words.design_days": lambda f, _: _design_days(f),
         "words.acts_first": lambda f, _: _acts_first(f),
-        "words.strength_gauge": _strength_gauge("strength_test_pressure"),
-        "words.strength_gauge_high_side": _strength_gauge("strength_test_pressure_high_side"),
+        "words.strength_gauge": strength_gauge("strength_test_pressure"),
+        "words.strength_gauge_high_side": strength_gauge("strength_test_pressure_high_side"),
         "words.flow_stages": lambda f, _: _flow_stages(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),

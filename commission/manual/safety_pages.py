@@ -24,7 +24,7 @@ _GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     ("Limit devices", (
         "standstill_pressure", "hottest_discharge_pressure", "high_pressure_limit_highest", "high_pressure_margin",
         "high_pressure_limit_temperature", "low_pressure_cut_out_temperature", "low_pressure_cut_in_temperature",
-        "relief_highest", "design_pressure_high_side", "design_pressure_low_side",
+        "low_pressure_trip_lowest", "relief_highest", "design_pressure_high_side", "design_pressure_low_side",
     )),
     ("Leaks", (
         "room_charge_limit", "leak_concentration", "leak_share_of_lfl", "flammable_alarm_level", "co2_equivalent",

@@ -64,6 +64,7 @@ TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
         "high_pressure_limit_temperature": ("condensing temperature at the high-pressure limit", Kind.TEMPERATURE),
         "low_pressure_cut_out_temperature": ("evaporating temperature at the low-pressure cut-out", Kind.TEMPERATURE),
         "low_pressure_cut_in_temperature": ("saturation temperature at the low-pressure cut-in", Kind.TEMPERATURE),
+        "low_pressure_trip_lowest": ("lowest pressure at which the low-pressure cut-out may act", Kind.PRESSURE),
         "evacuation_limit": ("evacuation: highest pressure the rule allows", Kind.PRESSURE),
         "evacuation_target": ("evacuation: pressure to reach", Kind.PRESSURE),
         "evacuation_hold": ("evacuation: time under vacuum", Kind.DURATION),

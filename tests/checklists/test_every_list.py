@@ -10,7 +10,8 @@ from pathlib import Path
 import pytest
 
 from commission.checklists import Item, stages
-from commission.description import load_plant
+from commission.description import LoadedPlant, load_plant
+from commission.safety import Substance, fluid_of, substance_of
 from tests.checklists.conftest import DAIRY, SYSTEMS, YARD
 
 LISTS = (
@@ -26,10 +27,28 @@ def _listed(folder: Path, system_id: str) -> tuple[Item, ...]:
 
 
 @pytest.fixture(params=LISTS, ids=lambda pair: pair[1])
-def listed(request: pytest.FixtureRequest, example_folder: Path) -> tuple[Item, ...]:
-    """The items of one system in their order."""
+def place(request: pytest.FixtureRequest, example_folder: Path) -> tuple[Path, str]:
+    """The folder and the id of one system."""
     folder, system_id = request.param
-    return _listed({"example": example_folder, "yard": YARD, "dairy": DAIRY}[folder], system_id)
+    return {"example": example_folder, "yard": YARD, "dairy": DAIRY}[folder], system_id
+
+
+@pytest.fixture
+def listed(place: tuple[Path, str]) -> tuple[Item, ...]:
+    """The items of one system in their order."""
+    return _listed(*place)
+
+
+@pytest.fixture
+def loaded(place: tuple[Path, str]) -> LoadedPlant:
+    """The plant of that system."""
+    return load_plant(place[0])
+
+
+@pytest.fixture
+def substance(loaded: LoadedPlant, place: tuple[Path, str]) -> Substance:
+    """The refrigerant of that system."""
+    return substance_of(fluid_of(loaded, place[1]))
 
 
 def ids(listed: tuple[Item, ...]) -> list[str]:
@@ -135,3 +154,76 @@ def test_a_hygiene_heating_is_read_where_it_is_asked_for(listed: tuple[Item, ...
     assert [name for name in order if name.startswith("controls.hygiene")] in ([], wanted)
     if wanted[0] in order and listed == _listed(example_folder, "shower-water"):
         assert "30 min" in item_of(listed, wanted[0]).do
+
+
+IN_THE_ROOMS = (
+    "safety.room-detector",
+    "safety.detector-power",
+    "safety.detector-fan",
+    "safety.door-switch",
+    "safety.horn",
+)
+"""What warns people of refrigerant, or keeps it from them."""
+LETS_IN = ("charging.open-valves", "charging.cylinder", "charging.vapour-first", "charging.first-vapour", "charging.weigh")
+"""Items at which refrigerant is in the hand, or in the circuit."""
+
+
+def test_detectors_are_proved_before_there_is_gas(listed: tuple[Item, ...]) -> None:
+    """A detector that is proved afterwards was no protection while the cylinder was open (EN 378-3, EN 378-4)."""
+    order = ids(listed)
+    for proof in set(IN_THE_ROOMS) & set(order):
+        assert not after(listed, proof, LETS_IN), proof
+
+
+def test_nobody_stands_by_while_refrigerant_is_let_in(listed: tuple[Item, ...]) -> None:
+    """Wherever a circuit is charged on site, the place is closed first (EN 378-4; common practice)."""
+    charged = "charging.weigh" in ids(listed)
+    assert ("charging.keep-away" in ids(listed)) is charged
+    assert not after(listed, "charging.keep-away", LETS_IN)
+
+
+def test_no_low_pressure_trip_reaches_below_the_air(listed: tuple[Item, ...]) -> None:
+    """Air that is drawn in can explode with a refrigerant that burns: no margin reaches below its pressure."""
+    for item in listed:
+        if item.id in ("live-trips.low-pressure", "live-trips.pump-down"):
+            assert item.must_read is not None
+            low = item.must_read.low
+            assert low is None or low >= AIR, item.must_read.text
+
+
+AIR = 95000.0
+"""Pa; no site of these plants lies so high that the air there weighs less (310 m: 97.7 kPa, ISO 2533)."""
+
+
+def test_a_margin_stops_at_the_pressure_of_the_air(example_folder: Path) -> None:
+    """0.10 bar g less 0.2 bar would be 0.10 bar below the air: the band of the freezer room begins at 0 bar g."""
+    loaded = load_plant(example_folder)
+    trip = {i.id: i for i in _listed(example_folder, "freezer-room")}["live-trips.pump-down"]
+    assert trip.must_read is not None
+    assert trip.must_read.low == pytest.approx(loaded.barometric_pressure)
+    assert trip.must_read.text.startswith("0.10 bar g, within 0.00 to 0.30 bar g")
+    assert "explode" in (trip.hazard or "")
+
+
+def test_no_flame_or_glow_is_offered_where_the_refrigerant_burns(
+    listed: tuple[Item, ...], substance: Substance
+) -> None:
+    """What a danger forbids no method of the same list may offer (EN 378-4; common practice)."""
+    for item in listed:
+        if substance.flammable:
+            assert "heat gun" not in (item.how or ""), item.id
+    offered = [item.how for item in listed if item.id == "safety.defrost-cut-out"]
+    assert all(("heat gun" in (how or "")) is not substance.flammable for how in offered)
+
+
+def test_every_instrument_that_an_item_names_is_brought(listed: tuple[Item, ...], loaded: LoadedPlant) -> None:
+    """Serial by serial; where no gauge reaches, the first list says what to bring."""
+    first = next(item for item in listed if item.id == "readiness.instruments")
+    for item in listed:
+        words = f"{item.do} {item.how or ''}"
+        for instrument in loaded.plant.instruments.values():
+            if instrument.serial and re.search(rf"\b{re.escape(instrument.serial)}\b", words):
+                assert instrument.serial in (first.how or ""), (item.id, instrument.serial)
+        wanted = re.search(r"bring one that reads to ([\d.]+ bar g) or more", words)
+        if wanted:
+            assert f"a gauge that reads to {wanted[1]} or more" in (first.how or ""), item.id

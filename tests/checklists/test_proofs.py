@@ -9,6 +9,7 @@ import pytest
 
 from commission.checklists import Item, stages
 from commission.description import LoadedPlant, load_plant
+from tests.checklists.conftest import YARD
 
 M3_PER_HOUR = 1 / 3600
 
@@ -69,6 +70,39 @@ def test_the_strength_test_names_a_gauge_that_reaches(example_folder: Path) -> N
     assert "bring one that reads to 193 bar g" in (
         listed(example_folder, "shower-water")["strength.high-side"].how or ""
     )
+
+
+def test_the_first_list_names_what_the_work_needs(example_folder: Path) -> None:
+    """Gauges of the pressure test, vacuum gauge and scale where a circuit is made on site, else none."""
+    item = "readiness.instruments"
+    wanted = {
+        "cold-room": ("LG-12", "HG-05", "VG-02", "SC-01"),
+        "freezer-room": ("HG-03", "HG-05", "VG-02", "SC-01"),
+        "dining-hall": ("HG-05", "VG-02", "SC-01"),
+        "shower-water": ("HG-22", "VG-02", "SC-01", "a gauge that reads to 193 bar g or more"),
+    }
+    for system, words in wanted.items():
+        for word in words:
+            assert word in (listed(example_folder, system)[item].how or ""), (system, word)
+    sealed = listed(example_folder, "floor-heating")[item].how or ""
+    assert not [word for word in ("VG-02", "SC-01", "HG-05", "to be brought") if word in sealed]
+
+
+def test_what_nobody_described_is_brought() -> None:
+    """A plant without instruments: 1.25 x 1.1 x 19 bar g is 26 bar g, 1.25 x 1.1 x 30 is 41 (common practice)."""
+    how = listed(YARD, "freezer")["readiness.instruments"].how or ""
+    assert "a gauge that reads to 26 bar g or more, for the strength test;" in how
+    assert "a gauge that reads to 41 bar g or more, for the strength test of the high side;" in how
+    assert how.endswith("an electronic vacuum gauge; a scale for the charge.")
+    assert "to be brought" not in (listed(YARD, "heat-pump")["readiness.instruments"].how or "")
+
+
+def test_a_freezer_is_proved_cold_as_well(example_folder: Path) -> None:
+    """Door, release and port can freeze: proved warm before the pull-down and again at −20 °C; not in a milk room."""
+    found = listed(example_folder, "freezer-room")
+    assert "−20.0 °C" in found["controls.release-cold"].do
+    assert {"safety.release", "installation.relief-port", "controls.port-cold"} <= set(found)
+    assert not {"controls.release-cold", "controls.port-cold"} & set(listed(example_folder, "cold-room"))
 
 
 def test_a_light_charge_leaves_the_public_room_alone(example_folder: Path) -> None:

@@ -72,6 +72,12 @@ def test_carbon_dioxide_card_says_that_it_has_no_smell(plant: Plants) -> None:
     assert "Touch no switch" not in found
 
 
+def test_both_limits_of_a_quarter_of_an_hour_are_explained(plant: Plants) -> None:
+    """EH40/2005: 15 000 ppm for 15 minutes; NIOSH: 30 000 ppm. The lower one leads, as on the personal alarm."""
+    found = text(card(plant(refrigerant="R-744", charge="8 kg")))
+    assert "15,000 ppm: fifteen minutes at work, in the United Kingdom (EH40), 30,000 ppm in the United States" in found
+
+
 def test_the_caller_can_say_where_and_meet_the_fire_brigade(plant: Plants) -> None:
     """Address and meeting point stand on the card; what the description does not say leaves room to write."""
     loaded = plant()
