@@ -164,7 +164,13 @@ IN_THE_ROOMS = (
     "safety.horn",
 )
 """What warns people of refrigerant, or keeps it from them."""
-LETS_IN = ("charging.open-valves", "charging.cylinder", "charging.vapour-first", "charging.first-vapour", "charging.weigh")
+LETS_IN = (
+    "charging.open-valves",
+    "charging.cylinder",
+    "charging.vapour-first",
+    "charging.first-vapour",
+    "charging.weigh",
+)
 """Items at which refrigerant is in the hand, or in the circuit."""
 
 
