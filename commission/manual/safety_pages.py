@@ -22,7 +22,8 @@ _GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
     )),
     ("Evacuation", ("evacuation_limit", "evacuation_target", "evacuation_hold", "rise_test_hold", "rise_test_limit")),
     ("Limit devices", (
-        "standstill_pressure", "hottest_discharge_pressure", "high_pressure_limit_highest", "high_pressure_margin",
+        "standstill_pressure", "standstill_least_volume", "hottest_discharge_pressure", "high_pressure_limit_highest",
+        "high_pressure_margin",
         "high_pressure_limit_temperature", "low_pressure_cut_out_temperature", "low_pressure_cut_in_temperature",
         "low_pressure_trip_lowest", "relief_highest", "design_pressure_high_side", "design_pressure_low_side",
     )),

@@ -95,6 +95,8 @@ RULES: tuple[Rule, ...] = (
          of_system=high_pressure.limiter_below_the_day),
     Rule("pressure.standstill", "standstill pressure against the nameplate", f"{EN_378} 6.2.2", MEMORY,
          of_system=allowable.standstill_over_allowable),
+    Rule("pressure.standstill-unknown", "standstill pressure that nothing shows", f"{EN_378} 6.2.2", MEMORY,
+         of_system=allowable.standstill_not_shown),
     Rule("pressure.allowable", "allowable pressure against the ambient class", f"{EN_378} table 2", MEMORY,
          of_system=allowable.allowable_below_table),
     Rule("pressure.cut-out", "the low-pressure cut-out against the expected suction", PRACTICE, NO_SOURCE,

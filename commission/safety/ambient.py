@@ -1,4 +1,4 @@
-"""Standstill pressure at the hottest ambient, and the least allowable pressures by ambient class (EN 378-2)."""
+"""The least allowable pressures by ambient class (EN 378-2)."""
 
 from __future__ import annotations
 
@@ -14,44 +14,6 @@ if TYPE_CHECKING:
     from commission.description import LoadedPlant
     from commission.description.model import System
     from commission.properties import Refrigerant
-
-
-def standstill(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:
-    """Bubble-point pressure at the hottest design ambient: what the circuit holds when it stands, with liquid in it."""
-    warmest = hottest_ambient(loaded, system_id)
-    if warmest is None:
-        out.refuse("the hottest ambient is not stated: write plant.climate.summer_dry_bulb", "standstill_pressure")
-        return
-    hottest, origin = warmest
-    rule = Fact(
-        "standstill",
-        0.0,
-        Kind.PRESSURE,
-        "EN 378-2",
-        "2016, 6.2.2",
-        "V1",
-        "the allowable pressure must cover standstill; nameplates decide",
-    )
-    if hottest >= fluid.T_critical:
-        out.refuse(
-            f"{fluid.name} has no liquid at the hottest ambient: the standstill pressure follows charge and volume",
-            "standstill_pressure",
-        )
-        return
-    try:
-        pressure = fluid.bubble(hottest).p
-    except NotCalculatedError as error:
-        out.refuse(str(error), "standstill_pressure")
-        return
-    out.add(
-        "standstill_pressure",
-        pressure,
-        "standstill_pressure",
-        (Input("hottest ambient", hottest, Kind.TEMPERATURE, origin),),
-        rule,
-        note="only while liquid is present, everything at one temperature, and not after pump-down",
-        uncertainty=pressure * fluid.pressure_relative_uncertainty,
-    )
 
 
 def design_pressures(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:

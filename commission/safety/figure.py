@@ -55,6 +55,7 @@ TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
         "tightness_test_hold": ("hold of the tightness test", Kind.DURATION),
         "nitrogen_change_per_kelvin": ("change of the test pressure for each kelvin", Kind.PRESSURE_DIFFERENCE),
         "standstill_pressure": ("standstill pressure at the hottest ambient", Kind.PRESSURE),
+        "standstill_least_volume": ("least volume of a circuit without liquid at the hottest ambient", Kind.VOLUME),
         "design_pressure_high_side": ("least allowable pressure, high side, by ambient class", Kind.PRESSURE),
         "design_pressure_low_side": ("least allowable pressure, low side, by ambient class", Kind.PRESSURE),
         "high_pressure_limit_highest": ("highest setting of the high-pressure limit", Kind.PRESSURE),

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from commission.quantities import Explained, Input, Kind
-from commission.safety.ambient import design_pressures, standstill
+from commission.safety.ambient import design_pressures
 from commission.safety.charge import SpaceCharge, charge_limits, lowest_limit, smallest_space
 from commission.safety.evacuation import evacuation_figures
 from commission.safety.facts import Fact, fact
@@ -18,6 +18,7 @@ from commission.safety.formulas import (
 from commission.safety.leaks import annex_ii_mass, leak_duty_of
 from commission.safety.limit_devices import limit_devices
 from commission.safety.register import fluid_of, substance_of
+from commission.safety.standstill import standstill
 from commission.safety.strength import pressure_test_figures
 
 if TYPE_CHECKING:

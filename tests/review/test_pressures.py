@@ -87,6 +87,34 @@ def test_standstill_over_the_nameplate(facts: Facts) -> None:
     assert not list(allowable.standstill_over_allowable(with_safety(facts())))
 
 
+def test_standstill_of_carbon_dioxide_that_nothing_shows(facts: Facts) -> None:
+    """Above 31 °C (NIST: 30.98 °C) a volume is asked for, with the least one; a volume, or a cool site, answers."""
+    plate = {"allowable_pressure_low": "80 bar g", "allowable_pressure_high": "130 bar g"}
+    carbon = {"refrigerant": "R-744", "nameplate": plate}
+    (remark,) = allowable.standstill_not_shown(with_safety(facts(carbon)))
+    assert remark.severity == "warning"
+    assert "internal_volume" in remark.what_to_do
+    assert 0 < remark.figures[1].value < 0.4 / 600
+    volumes = {"evaporator": {"internal_volume": "2 L"}, "condenser": {"internal_volume": "0.5 L"}}
+    answered = with_safety(facts({**carbon, **volumes}))
+    assert not list(allowable.standstill_not_shown(answered))
+    assert not list(allowable.standstill_over_allowable(answered))
+    assert not list(allowable.standstill_not_shown(with_safety(facts())))
+
+
+def test_standstill_of_carbon_dioxide_over_the_nameplate(facts: Facts) -> None:
+    """0.4 kg in 0.5 L with a receiver of 2 L stays below 80 bar g; 2 kg in the same passes it."""
+    carbon = {
+        "refrigerant": "R-744",
+        "nameplate": {"allowable_pressure_low": "80 bar g", "allowable_pressure_high": "130 bar g"},
+        "evaporator": {"internal_volume": "0.3 L"},
+        "condenser": {"internal_volume": "0.2 L"},
+    }
+    assert not list(allowable.standstill_over_allowable(with_safety(facts(carbon))))
+    (remark,) = allowable.standstill_over_allowable(with_safety(facts({**carbon, "charge": "2 kg"})))
+    assert remark.path == "systems.one.nameplate.allowable_pressure_low"
+
+
 def test_a_nameplate_below_the_ambient_class(facts: Facts) -> None:
     """EN 378-2 table 2 asks for saturation at 55 °C on an air-cooled high side up to 32 °C: 19.1 bar absolute."""
     here = with_safety(facts({"nameplate": {"allowable_pressure_high": "16 bar g"}, "receiver": None}))

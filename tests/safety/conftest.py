@@ -30,6 +30,7 @@ systems:
     heat_sink: {{medium: air, space: yard}}
     receiver: {{{receiver}}}
     controls: {{{controls}}}
+    {volumes}
     rated_points:
       - {{heat_source_inlet_temperature: 2 °C, heat_sink_inlet_temperature: 28 °C,
          cooling_capacity: 3.4 kW, power_input: 1.5 kW}}
@@ -37,6 +38,7 @@ systems:
 PLAIN = {
     "altitude": "0 m",
     "summer": "30 °C",
+    "volumes": "",
     "occupancy": "authorised persons only",
     "below": "no",
     "duty": "cold_storage",

@@ -13,6 +13,8 @@ from commission.quantities import methods
 from commission.safety import FIGURE_TITLES, hottest_ambient, limit_order, safety_figures, strength_test_steps
 
 Plants = Callable[..., LoadedPlant]
+VOLUMES = "evaporator: {{internal_volume: {}}}\n    condenser: {{internal_volume: {}}}"
+CO2_PLATE = "allowable_pressure_low: 80 bar g, allowable_pressure_high: 130 bar g"
 
 
 def gauge(loaded: LoadedPlant, absolute: float) -> float:
@@ -82,6 +84,45 @@ def test_carbon_dioxide_has_no_standstill_saturation_on_a_hot_day(plant: Plants)
     """Above 31 °C there is no liquid: the figure says why it is missing."""
     figures = safety_figures(plant(refrigerant="R-744", summer="35 °C"), "one")
     assert "no liquid" in figures.not_calculated["standstill_pressure"]
+
+
+def test_carbon_dioxide_without_a_volume_says_the_least_one(plant: Plants) -> None:
+    """Whatever the circuit holds, one smaller than charge over density at the stamp passes it; the keys are named."""
+    loaded = plant(refrigerant="R-744", summer="35 °C", charge="2 kg", nameplate=CO2_PLATE)
+    figures = safety_figures(loaded, "one")
+    assert "evaporator.internal_volume and condenser.internal_volume" in figures.not_calculated["standstill_pressure"]
+    least = figures.found["standstill_least_volume"].value
+    density = refrigerant("R-744").vapour(308.15, 80e5 + loaded.barometric_pressure).rho
+    assert least == pytest.approx(2.0 / density)
+
+
+def test_the_least_volume_stands_at_the_stamp(plant: Plants) -> None:
+    """Both figures are one relation: in the least volume the charge stands at the lowest stamped pressure."""
+    changes = {"refrigerant": "R-744", "summer": "35 °C", "charge": "2 kg", "nameplate": CO2_PLATE}
+    least = safety_figures(plant(**changes), "one").found["standstill_least_volume"].value
+    half, quarter = (f"{least * 1e3 / parts:.9f} L" for parts in (2, 4))
+    volumes = VOLUMES.format(half, quarter)
+    loaded = plant(**changes, volumes=volumes, receiver=f"volume: {quarter}")
+    figures = safety_figures(loaded, "one")
+    assert gauge(loaded, figures.found["standstill_pressure"].value) == pytest.approx(80.0, rel=1e-6)
+    assert limit_order(loaded, "one", figures).problems == ()
+
+
+def test_too_small_a_circuit_is_out_of_order(plant: Plants) -> None:
+    """2 kg in 2.9 L at 35 °C is denser than at 80 bar g: the low side passes its stamp when the power is cut."""
+    changes = {"refrigerant": "R-744", "summer": "35 °C", "charge": "2 kg", "nameplate": CO2_PLATE}
+    loaded = plant(**changes, volumes=VOLUMES.format("1.5 L", "0.4 L"), receiver="volume: 1 L")
+    titles = [problem.title for problem in limit_order(loaded, "one", safety_figures(loaded, "one")).problems]
+    assert any("at standstill on the hottest day the low side" in title for title in titles)
+
+
+def test_without_a_charge_nothing_is_said_of_standstill(plant: Plants) -> None:
+    """Neither figure stands on an assumed charge; and with liquid present no volume is asked for."""
+    path = plant(refrigerant="R-744", summer="35 °C").folder / "plant.yaml"
+    path.write_text(path.read_text(encoding="utf-8").replace("    charge: 0.45 kg\n", ""), encoding="utf-8")
+    bare = safety_figures(load_plant(path.parent), "one").not_calculated
+    assert all("the charge is not stated" in bare[key] for key in ("standstill_pressure", "standstill_least_volume"))
+    assert "liquid present" in safety_figures(plant(), "one").not_calculated["standstill_least_volume"]
 
 
 def test_a_blend_stands_at_its_bubble_point(plant: Plants) -> None:

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from commission.quantities import Kind
 from commission.review.facts import SystemFacts
 from commission.review.finding import Remark
+from commission.safety import hottest_ambient
 
 SIDES = ("low", "high")
 
@@ -37,6 +38,31 @@ def standstill_over_allowable(facts: SystemFacts) -> Iterator[Remark]:
             figure.source,
             figure.sureness,
         )
+
+
+def standstill_not_shown(facts: SystemFacts) -> Iterator[Remark]:
+    """A circuit without liquid on the hottest day whose pressure at rest cannot be worked out.
+
+    Source: EN 378-2, 6.2.2: the allowable pressure covers standstill. Above its critical temperature a refrigerant has
+    no saturation: what it holds follows from charge and volume.
+    """
+    least = facts.safety_figure("standstill_least_volume")
+    warmest = hottest_ambient(facts.plant.loaded, facts.id)
+    if facts.safety_figure("standstill_pressure") is not None or facts.refrigerant is None or warmest is None:
+        return
+    if warmest[0] < facts.refrigerant.T_critical:
+        return
+    yield Remark(
+        "warning",
+        facts.path(),
+        f"Nothing shows what {facts.title} holds at standstill on the hottest day: it has no liquid then.",
+        (
+            facts.plant.figure("hottest ambient", warmest[0], Kind.TEMPERATURE),
+            *(() if least is None else (facts.plant.figure(least.title, least.value, Kind.VOLUME),)),
+        ),
+        "Write the charge, evaporator.internal_volume and condenser.internal_volume, with receiver and accumulator, as "
+        "the supplier states them; a circuit smaller than the least volume passes its stamp when the power is cut.",
+    )
 
 
 def allowable_below_table(facts: SystemFacts) -> Iterator[Remark]:
