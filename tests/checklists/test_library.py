@@ -168,6 +168,7 @@ BEFORE = [
     ("installation.relief-outlet", "charging.weigh"),
     ("flows.store-filled", "controls.hygiene"),
     ("safety.store-cut-out", "controls.hygiene"),
+    ("flows.store-filled", "electrical.pumps"),
     ("flows.disinfected", "flows.outlets-shut"),
     ("flows.outlets-shut", "first-start.current"),
     ("controls.hygiene-bottom", "handover.legionella-first"),
