@@ -33,7 +33,9 @@ WIDE_SCATTER = 0.05
 (common practice, no source)."""
 
 
-CONSIDERED = frozenset({"source_flow_departure", "sink_flow_departure", "source_humidity", "rating_to_the_mean"})
+CONSIDERED = frozenset(
+    {"source_flow_departure", "sink_flow_departure", "source_humidity", "rating_to_the_mean", "rating_of_a_wet_coil"}
+)
 """Assumptions about the condition or about what a catalogue means, not about the machine: the rated points do not move
 them, or a rated flow would be shown as another than the stated one. Their ranges count in full."""
 

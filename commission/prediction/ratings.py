@@ -29,12 +29,16 @@ def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: fl
     air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
     capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
-    share = air_share(facts, a) if rating.surface != "dry" else None
     dew = rating_difference(facts, a)
     assert dew is not None
     glide = facts.glide(air_on - rating.temperature_difference)
     difference = between(dew, dew + 2 * MEAN_BELOW_DEW * glide)
-    return _rating("evaporator", capacity, difference, medium, share)
+    dry = _rating("evaporator", capacity, difference, medium)
+    share = air_share(facts, a)
+    if share is None or rating.surface == "dry":
+        return dry
+    wet = 1.0 if rating.surface is not None else a["rating_of_a_wet_coil"]
+    return dry + wet * (_rating("evaporator", capacity, difference, medium, share) - dry)
 
 
 def _to_the_mean(facts: Facts, a: Mapping[str, float], at: str | None) -> float:
