@@ -134,6 +134,8 @@ RULES: tuple[Rule, ...] = (
          of_system=stores.lukewarm_below_element),
     Rule("run.store-hygiene", "stored hot water that is not heated through", "HSG274, DVGW W 551", "from memory",
          of_system=stores.not_heated_through),
+    Rule("law.circulation", "a circulation loop that does not balance", BALANCE, DEFINED,
+         of_system=stores.circulation_does_not_balance),
     Rule("people.walk-in", "a walk-in room that can lock somebody in", "EN 378-1; common practice", "from memory",
          of_system=people.locked_in),
     Rule("people.detector", "a leak that nobody would notice", "EN 378-3; EU 2024/573 article 6", "from memory",

@@ -252,6 +252,21 @@ def test_a_store_that_is_not_heated_through(facts: Facts) -> None:
     assert not list(stores.not_heated_through(facts({**WATER, "store": {**store, "set_point": "62 °C"}})))
 
 
+def test_a_circulation_that_does_not_balance(facts: Facts) -> None:
+    """First law by hand: 180 L/h over 8 K carry 1.65 kW, not 380 W; 66 L/h over 5 K carry 0.38 kW. What is not written
+    cannot contradict."""
+
+    def judge(**loop: str) -> list[Remark]:
+        store = {"volume": "300 L", "set_point": "60 °C", "circulation": loop}
+        return list(stores.circulation_does_not_balance(facts({**WATER, "store": store})))
+
+    (remark,) = judge(return_temperature="52 °C", flow="180 L/h", heat_loss="380 W")
+    assert remark.severity == "warning"
+    assert figure(remark, "heat that this flow gives up between the two").text == "1.65 kW"
+    assert not judge(return_temperature="55 °C", flow="66 L/h", heat_loss="380 W")
+    assert not judge(return_temperature="52 °C", heat_loss="380 W")
+
+
 @pytest.mark.parametrize(
     ("space", "severity", "figures"),
     [({}, "note", 2), ({"release_from_inside": "yes"}, "note", 1),

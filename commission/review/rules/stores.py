@@ -1,4 +1,4 @@
-"""Stores of hot water: what stays lukewarm, and what is never heated through."""
+"""Stores of hot water: what stays lukewarm, what is never heated through, and a loop that does not balance."""
 
 from __future__ import annotations
 
@@ -62,4 +62,39 @@ def not_heated_through(facts: SystemFacts) -> Iterator[Remark]:
         "scalding.",
         entry.source,
         entry.mark,
+    )
+
+
+def circulation_does_not_balance(facts: SystemFacts) -> Iterator[Remark]:
+    """A circulation loop whose flow, return and heat loss do not belong together.
+
+    Source: first law on the loop: heat loss = flow x density x heat capacity x (set point - return). The water that
+    leaves may be a few kelvin off the set point, hence the wide threshold `circulation_balance`.
+    """
+    from commission.properties import liquid
+
+    store = facts.system.store
+    loop = None if store is None else store.circulation
+    if store is None or loop is None or store.set_point is None:
+        return
+    if loop.flow is None or loop.return_temperature is None or loop.heat_loss is None:
+        return
+    change, water = store.set_point - loop.return_temperature, liquid("water")
+    mean = 0.5 * (store.set_point + loop.return_temperature)
+    carried = loop.flow * water.density(store.set_point) * water.specific_heat(mean) * change
+    if abs(carried - loop.heat_loss) <= facts.plant.limit("circulation_balance") * loop.heat_loss:
+        return
+    plant = facts.plant
+    yield Remark(
+        "warning",
+        facts.path("store", "circulation"),
+        f"Flow, return and heat loss of the circulation of {facts.title} do not belong together.",
+        (
+            plant.figure("set point of the store", store.set_point, Kind.TEMPERATURE),
+            plant.figure("return", loop.return_temperature, Kind.TEMPERATURE),
+            plant.figure("flow of the loop", loop.flow, Kind.VOLUME_FLOW),
+            plant.figure("heat that this flow gives up between the two", carried, Kind.HEAT_FLOW),
+            plant.figure("heat loss of the loop as written", loop.heat_loss, Kind.HEAT_FLOW),
+        ),
+        "Find out which of the three is measured and which is a guess; heat-up times and hygiene rest on them.",
     )
