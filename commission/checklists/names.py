@@ -114,6 +114,12 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.relief_valves": ("text", "set pressure of each relief valve, by where it sits", ()),
         "words.power_counts": ("text", "what the rated power input counts", ()),
         "words.rest_pressures": ("text", "pressure of liquid and vapour at rest at a few temperatures", ()),
+        "words.held_off_superheat": ("text", "why the superheat is expected at another value than it is set to", ()),
+        "words.held_off_discharge_pressure": (
+            "text",
+            "why the high pressure is expected at another value than it is set to",
+            (),
+        ),
         "words.records": ("text", "what the refrigerant law wants recorded", ()),
     }
 )

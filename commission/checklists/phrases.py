@@ -205,6 +205,13 @@ def _power_counts(facts: Facts) -> str | None:
     return ", ".join(counted[:-1]) + (" and " if len(counted) > 1 else "") + counted[-1]
 
 
+def _held_off(facts: Facts, name: str) -> str | None:
+    """Why the expected value of a setting is not the stated one: `held_off_superheat` asks for that of superheat."""
+    prediction = facts.predictions.get("expected")
+    found = prediction.held_off if prediction is not None else ()
+    return next((one.words(facts.display) for one in found if one.quantity == name.removeprefix("held_off_")), None)
+
+
 REST_AT = (283.15, 293.15, 303.15)
 """Temperatures at which the pressure at rest is shown, K."""
 
@@ -247,6 +254,8 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.flow_stages": lambda f, _: _flow_stages(f),
         "words.levels": lambda f, _: _levels(f),
         "words.highest_discharge": lambda f, _: _highest_discharge(f),
+        "words.held_off_superheat": _held_off,
+        "words.held_off_discharge_pressure": _held_off,
         "words.records": lambda f, _: _records(f),
         "words.reset": lambda f, _: _reset(f),
         "words.relief_valves": lambda f, _: _relief_valves(f),

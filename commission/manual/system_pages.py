@@ -273,6 +273,7 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
         context |= {
             "conditions": conditions_words(plant, data, data.rated.conditions),
             "warnings": data.rated.warnings,
+            "settings": [words for one in data.rated.held_off if (words := one.words(display))],
             "groups": expected_rows(data, display),
             "charts": figures,
             "grid_note": _grid_note(plant, data, grid) if grid else "",
@@ -345,7 +346,7 @@ def assumptions(plant: PlantData, data: SystemData) -> Sheet:
 
 def _percent(a: ShownAssumption) -> Mapping[str, Any]:
     share = None if a.share is None else ("under 1 %" if a.share < 0.01 else f"{a.share:.0%}".replace("%", " %"))
-    fields = ("key", "title", "value", "range", "source", "mark", "origin", "replaced_by", "effects")
+    fields = ("key", "title", "value", "moved", "range", "source", "mark", "origin", "replaced_by", "effects")
     return {f: getattr(a, f) for f in fields} | {"share": share}
 
 

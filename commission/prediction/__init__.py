@@ -6,6 +6,7 @@ from commission.prediction.faults import FAULTS, Fault, with_fault
 from commission.prediction.heating_up import HeatUp, heat_up
 from commission.prediction.model import Nominal, Prediction, SystemModel, fit
 from commission.prediction.saturation import SaturationRow, saturation_table
+from commission.prediction.settings import HeldOff, value_used
 from commission.prediction.surface import operating_surface
 
 __all__ = [
@@ -13,6 +14,7 @@ __all__ = [
     "ConditionAxis",
     "Fault",
     "HeatUp",
+    "HeldOff",
     "Nominal",
     "Prediction",
     "SaturationRow",
@@ -22,5 +24,6 @@ __all__ = [
     "heat_up",
     "operating_surface",
     "saturation_table",
+    "value_used",
     "with_fault",
 ]

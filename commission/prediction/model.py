@@ -20,6 +20,7 @@ from commission.prediction.operation import told_of_operation
 from commission.prediction.plan import Plan
 from commission.prediction.rated import reference
 from commission.prediction.refusals import cannot_be, fitted, walk
+from commission.prediction.settings import HeldOff, held_off
 from commission.prediction.streams import media
 from commission.properties import Refrigerant
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
@@ -42,7 +43,8 @@ class Prediction:
     from the weather curve is not among them but in a sentence of `warnings`. `parts` holds, for each expected
     key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root sum of
     squares. `not_calculated` gives the reason for each quantity that has no value. `sink_flow_share` is the mean
-    flow of the heat sink that the head-pressure control leaves, over that of the conditions.
+    flow of the heat sink that the head-pressure control leaves, over that of the conditions. `held_off` are the
+    settings that are calculated at another value than the stated one.
     """
 
     system: str
@@ -55,6 +57,7 @@ class Prediction:
     warnings: tuple[str, ...]
     parts: Mapping[str, Mapping[str, float]]
     sink_flow_share: float = 1.0
+    held_off: tuple[HeldOff, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -307,6 +310,7 @@ class SystemModel:
             tuple(dict.fromkeys(warnings)),
             parts,
             point.balance.sink_flow_share,
+            held_off(self.facts, self.fit),
         )
 
     def _own_parts(self, nominal: Found, parts: dict[str, dict[str, float]]) -> None:

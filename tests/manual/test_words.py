@@ -4,10 +4,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from pathlib import Path
+from types import SimpleNamespace
+from typing import Any
 
 import pytest
 
+from commission.description import Assumption
 from commission.manual import search
+from commission.manual.assumed import shown_assumptions
 from commission.manual.book import Book, Sheet, slug, slugs
 from commission.manual.facts import stated_number
 from commission.manual.figures import Chart, Line, by_night, draw_chart
@@ -48,6 +52,21 @@ PAGES = {k: k for k in ("what", "findings", "checklist", "day_sheet", "test", "o
 def test_band_is_two_standard_uncertainties(kind: Kind, value: float, uncertainty: float | None, text: str) -> None:
     """The band is value plus and minus two standard uncertainties in display units; one that rounds away says so."""
     assert band_text(METRIC, kind, value, uncertainty) == text
+
+
+def test_a_moved_assumption_is_shown_as_it_is_used_with_the_listed_value_beside_it() -> None:
+    """The value is the one the calculation used; why it is not the listed one is said, a narrow share with a digit."""
+    kind, moves = Kind.RATIO, ("refrigerant_flow",)
+    leak = Assumption("leak", "Leakage", 0.02, 0.008, 0.04, kind, "test", "test", moves, "a reading", "library")
+    data: Any = SimpleNamespace(
+        assumptions={"leak": leak}, model=SimpleNamespace(fit=SimpleNamespace(values={"leak": 0.0263})), rated=None,
+        effects={},
+    )  # fmt: skip
+    (shown,) = shown_assumptions(data, METRIC)
+    assert (shown.value, shown.range) == ("2.6 %", "0.8 to 4.0 %")
+    assert shown.moved == "the list says 2.0 %: moved within its range to meet the rated points best"
+    data.model.fit.values["leak"] = 0.0201
+    assert shown_assumptions(data, METRIC)[0].moved == ""
 
 
 def test_spread_has_a_sign_and_never_shows_nothing_for_something() -> None:

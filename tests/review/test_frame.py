@@ -208,10 +208,14 @@ def test_the_fact_most_worth_knowing(facts: Facts) -> None:
     here = facts(expected={"design": {"suction_pressure": (4e5, 1e4), "power_input": (1500.0, 50.0)}})
     parts = {"suction_pressure": {"b": -8e3, "a": 2e3}, "power_input": {"a": 30.0, "b": 40.0, "property source": 60.0}}
     vars(here.outlooks["design"].prediction)["parts"] = parts
-    model: Any = SimpleNamespace(assumptions={"a": assumption("a", "First"), "b": assumption("b", "Second")})
+    listed = {"a": assumption("a", "First"), "b": assumption("b", "Second")}
+    model: Any = SimpleNamespace(assumptions=listed, fit=SimpleNamespace(values={"b": 4.0}))
     (remark,) = missing.most_worth_knowing(replace(here, model=model))
     assert remark.title == "The fact most worth finding out about Chiller one: second."
-    assert [f.text for f in remark.figures] == ["4.0 K (1.0 to 9.0 K)", "± 0.08 bar", "± 0.04 kW"]
+    assert [f.text for f in remark.figures] == ["4.0 K (range 1.0 to 9.0 K)", "± 0.08 bar", "± 0.04 kW"]
+    model.fit.values["b"] = 3.2
+    (remark,) = missing.most_worth_knowing(replace(here, model=model))
+    assert remark.figures[0].text == "3.2 K (moved by the rated points from 4.0 K; range 1.0 to 9.0 K)"
     assert not list(missing.most_worth_knowing(here))
 
 

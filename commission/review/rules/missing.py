@@ -28,6 +28,7 @@ def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
 
     Source: JCGM 100: share of each cause in the variance, mean over the leading values (`prediction.worth`).
     """
+    from commission.prediction import value_used
     from commission.prediction.worth import most_worth
 
     outlook = facts.outlooks.get("design")
@@ -42,8 +43,10 @@ def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
     show = facts.plant.display
     title = f"{assumption.title[:1].lower()}{assumption.title[1:]}"
     ends = f"{show.number(assumption.low, kind)} to {show.text(assumption.high, kind)}"
-    text = f"{show.text(assumption.value, kind)} ({ends})"
-    figures = [Figure(f"assumed: {title}", text, assumption.value, kind)]
+    used = value_used(facts.model, assumption)
+    listed = show.text(assumption.value, kind)
+    moved = f"moved by the rated points from {listed}; " if show.text(used, kind) != listed else ""
+    figures = [Figure(f"assumed: {title}", f"{show.text(used, kind)} ({moved}range {ends})", used, kind)]
     for moved, part in parts.items():
         size = abs(part.get(key, 0.0))
         if size > 0.1 * math.hypot(*part.values()) and moved in outlook.prediction.expected:
