@@ -160,10 +160,17 @@ def _insert(
     if move.after is not None:
         earlier = {*order[: order.index(move.after) + 1]}
         index = max((i + 1 for i, (x, _) in enumerate(there) if x.entry.id in earlier), default=0)
+        while index < len(there) and _moved_behind(there[index][0], move.after):
+            index += 1
     elif move.before is not None:
         later = {*order[order.index(move.before) :]}
         index = min((i for i, (x, _) in enumerate(there) if x.entry.id in later), default=index)
     there.insert(index, (item, note))
+
+
+def _moved_behind(item: CheckedItem, named: str) -> bool:
+    """Whether an item was moved behind the same one already: several keep the order of the library."""
+    return item.entry.move is not None and item.entry.move.after == named
 
 
 def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:

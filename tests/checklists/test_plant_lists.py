@@ -142,3 +142,35 @@ items:
 def test_what_cannot_be_used_is_refused(example_copy: Path, text: str, words: str) -> None:
     """Each fault of form or meaning is a problem at its place."""
     assert any(words in problem.message for problem in refused(example_copy, text).problems)
+
+
+def test_items_of_a_plant_are_moved_behind_or_before_others(example_copy: Path) -> None:
+    """Several moved to one place keep their order; where the named item does not apply, the next that does counts."""
+    found = own(
+        example_copy,
+        """stage: safety
+items:
+  - {id: safety.one, do: Look once., source: ours, move: {to: charging, before: charging.detector-people}}
+  - {id: safety.two, do: Look twice., source: ours, move: {to: charging, before: charging.detector-people}}
+  - {id: safety.three, do: Look thrice., source: ours, move: {to: charging, after: charging.detector}}
+  - {id: safety.four, do: Look again., source: ours, move: {to: charging, after: charging.detector}}
+""",
+    )
+    order = [item.id for stage in found if stage.id == "charging" for item in stage.items]
+    assert order[:4] == ["charging.keep-away", "charging.detector", "safety.three", "safety.four"]
+    assert order[4:7] == ["safety.one", "safety.two", "charging.cylinder"]
+
+
+@pytest.mark.parametrize(
+    ("move", "value", "message"),
+    [
+        ("{to: charge}", "charge", "no stage has this id"),
+        ("{to: charging, before: charging.cylindre}", "charging.cylindre", "no item of the stage charging"),
+        ("{to: charging, after: charging.detector, before: charging.cylinder}", "charging.cylinder", "not both"),
+    ],
+)
+def test_a_move_names_one_place_that_exists(example_copy: Path, move: str, value: str, message: str) -> None:
+    """A stage or item that no list holds, or two places at once, is refused with its line."""
+    text = f"stage: safety\nitems:\n  - {{id: safety.one, do: Look once., source: ours, move: {move}}}\n"
+    problem = next(p for p in refused(example_copy, text).problems if message in p.message)
+    assert (problem.value, problem.line) == (value, 3)
