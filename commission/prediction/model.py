@@ -125,7 +125,8 @@ class SystemModel:
         return tuple(found)
 
     def nominal(self, conditions: Sequence[Mapping[str, float]]) -> tuple[Nominal | NotCalculatedError, ...]:
-        """Expected values alone, without uncertainty, at many conditions, each started from the one before (SI).
+        """Expected values alone, without uncertainty, at many conditions, each started from the one before (SI), or
+        else reached by way of the rated condition.
 
         Where there is no balance, the reason. Many times quicker than as many predictions.
 
@@ -146,7 +147,7 @@ class SystemModel:
     @in_words
     def _nominal(self, given: Mapping[str, float], start: OperatingPoint | None) -> tuple[Nominal, OperatingPoint]:
         whole, _, _ = self._complete(given)
-        found, point = self._values(self.fit.plan, whole, start)
+        found, point = self._solved(whole, start)
         return Nominal(found.values, point.balance.regime), point
 
     @in_words

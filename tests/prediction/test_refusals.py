@@ -102,3 +102,13 @@ def test_unknown_conditions_are_input_errors(models: dict[str, SystemModel]) -> 
     """A key that is no condition is a slip of the person, not of the machine."""
     with pytest.raises(InputError):
         models["cold-room"].predict({"compressor_speed": 50.0})
+
+
+def test_many_conditions_at_once_reach_as_far_as_one(models: dict[str, SystemModel]) -> None:
+    """Where `predict` finds a balance far from the rated condition `nominal` finds the same, wherever it comes from."""
+    model = models["dining-hall"]
+    far = [{SOURCE: KELVIN + room, SINK: KELVIN + out} for out in (-14, -6, 40) for room in (32, 27, 21)]
+    for at, one in zip(far, model.nominal(far), strict=True):
+        assert not isinstance(one, NotCalculatedError), at
+        expected = model.predict(at).expected["cooling_capacity"].value
+        assert one.values["cooling_capacity"] == pytest.approx(expected, rel=1e-5)
