@@ -233,3 +233,15 @@ def test_every_instrument_that_an_item_names_is_brought(listed: tuple[Item, ...]
         wanted = re.search(r"bring one that reads to ([\d.]+ bar g) or more", words)
         if wanted:
             assert f"a gauge that reads to {wanted[1]} or more" in (first.how or ""), item.id
+
+
+def test_a_unit_that_can_burn_is_sniffed_before_it_is_opened_for_upkeep(listed: tuple[Item, ...]) -> None:
+    """What burns is looked at again: casing before a cover is off, leak search, zone, vent of the water."""
+    order = ids(listed)
+    upkeep = [name for name in order if name.startswith("upkeep.")]
+    for once, again in (("installation.zone", "upkeep.zone"), ("flows.gas-vent", "upkeep.gas-vent")):
+        assert (once in order) is (again in order)
+    if "charging.detector" in order or "installation.arrival" in order:
+        assert upkeep[:2] == ["upkeep.casing-gas", "upkeep.leaks"]
+    else:
+        assert "upkeep.casing-gas" not in order

@@ -180,7 +180,8 @@ def test_only_what_applies_is_due(yard: Site) -> None:
     assert {"release", "freezer-frame", "alarm"} <= by_system["freezer"]
     assert "air-filters" in by_system["split"]
     assert not {"shower", "hot-water", "air-filters", "tower-water", "strainers"} & by_system["freezer"]
-    assert "leaks" not in by_system["heat-pump"]
+    assert {"casing-gas", "leaks", "zone", "gas-vent"} <= by_system["heat-pump"]
+    assert not {"casing-gas", "zone", "gas-vent"} & (by_system["freezer"] | by_system["water-heater"])
 
 
 def test_acts_carry_hazard_and_marks(yard: Site) -> None:

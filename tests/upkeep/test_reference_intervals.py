@@ -24,6 +24,9 @@ START = dt.date(2024, 2, 29)
 LAST_DAYS = {
     # Regulation (EU) 2024/573, article 5: "at least every 12 months"; law's rows are tested below
     "leaks": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
+    "casing-gas": ("2025-02-28", "common practice, no source"),
+    "zone": ("2025-02-28", "common practice, no source"),
+    "gas-vent": ("2025-02-28", "common practice, no source"),
     "detectors": ("2025-02-28", "Regulation (EU) 2024/573, article 6 (every 12 months), from memory"),
     "high-pressure": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "relief-look": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
