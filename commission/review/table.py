@@ -107,6 +107,8 @@ RULES: tuple[Rule, ...] = (
          of_system=low_pressure.cold_start),
     Rule("pressure.below-atmosphere", "suction below atmosphere", PRACTICE, DEFINED,
          of_system=low_pressure.below_atmosphere),
+    Rule("pressure.cut-out-below-atmosphere", "a low-pressure cut-out below atmosphere, the refrigerant flammable",
+         PRACTICE, DEFINED, of_system=low_pressure.cut_out_below_the_air),
     Rule("run.head-pressure", "a head-pressure hold above the design condition", PRACTICE, DEFINED,
          of_system=envelope.head_pressure_hold),
     Rule("run.suction-limit", "a suction pressure limit that acts at the design condition", PRACTICE, DEFINED,

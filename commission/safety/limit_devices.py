@@ -8,7 +8,6 @@ from commission.errors import NotCalculatedError
 from commission.quantities import Input, Kind
 from commission.safety.facts import Fact, fact
 from commission.safety.figure import Collector, fact_input
-from commission.safety.register import substance_of
 from commission.safety.stamped import hottest_ambient, place, relief_valves, stamped_pressures
 
 if TYPE_CHECKING:
@@ -47,7 +46,7 @@ def limit_devices(
         )
     _hottest_day(loaded, system_id, model, out)
     _setting_temperatures(loaded, system_id, fluid, out)
-    _lowest_trip(loaded, system_id, fluid, out)
+    _lowest_trip(loaded, system_id, out)
 
 
 def _hottest_day(loaded: LoadedPlant, system_id: str, model: SystemModel | None, out: Collector) -> None:
@@ -123,16 +122,15 @@ def _setting_temperatures(loaded: LoadedPlant, system_id: str, fluid: Refrigeran
         )
 
 
-def _lowest_trip(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:
+def _lowest_trip(loaded: LoadedPlant, system_id: str, out: Collector) -> None:
     """No cut-out acts so late that the low side draws in air, unless the plant was made to run below it."""
     key = "low_pressure_trip_lowest"
     setting = loaded.system(system_id).controls.low_pressure_cut_out
     if setting is None:
         out.refuse("not stated: controls.low_pressure_cut_out", key)
         return
-    flammable = substance_of(fluid).flammable
-    if loaded.absolute(setting) < loaded.barometric_pressure and not flammable:
-        out.refuse("the plant is set to run below the pressure of the air, and its refrigerant does not burn", key)
+    if loaded.absolute(setting) < loaded.barometric_pressure:
+        out.refuse("the plant is set to run below the pressure of the air (controls.low_pressure_cut_out)", key)
         return
     rule = fact("low_pressure_trip_lowest")
     air = Input("pressure of the air", loaded.barometric_pressure, Kind.PRESSURE, "plant.altitude, ISO 2533")

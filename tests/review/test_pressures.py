@@ -151,6 +151,25 @@ def test_a_cut_in_that_is_never_reached(facts: Facts) -> None:
     assert not list(low_pressure.never_cuts_in(facts()))
 
 
+@pytest.mark.parametrize(
+    ("setting", "refrigerant_name", "suction", "severity"),
+    [
+        ("-0.1 bar g", "R-290", 1.5e5, "error"),
+        ("-0.1 bar g", "R-290", 0.9e5, "warning"),
+        ("0.1 bar g", "R-290", 1.5e5, None),
+        ("-0.1 bar g", "R-448A", 1.5e5, None),
+    ],
+)
+def test_a_cut_out_that_lets_air_in(
+    facts: Facts, setting: str, refrigerant_name: str, suction: float, severity: str | None
+) -> None:
+    """R-290 burns (class A3), R-448A does not (A1); a plant made for a vacuum is told of it and not refused."""
+    change = {"controls": {"low_pressure_cut_out": setting}, "refrigerant": refrigerant_name}
+    here = facts(change, expected={"design": {"suction_pressure": (suction, 1e3)}})
+    found = [remark.severity for remark in low_pressure.cut_out_below_the_air(here)]
+    assert found == ([severity] if severity else [])
+
+
 @pytest.mark.parametrize(("expected", "fires"), [(0.9e5, True), (1.2e5, False)])
 def test_suction_below_atmosphere(facts: Facts, expected: float, fires: bool) -> None:
     """0.9 bar absolute draws in air at sea level; 1.2 bar does not."""

@@ -133,6 +133,18 @@ def test_a_blend_stands_at_its_bubble_point(plant: Plants) -> None:
     assert value > fluid.dew(303.15).p * 1.05
 
 
+@pytest.mark.parametrize("altitude", ["0 m", "2500 m"])
+def test_no_cut_out_may_act_below_the_air_of_its_site(plant: Plants, altitude: str) -> None:
+    """Zero on the gauge, whatever the altitude (ISO 2533: 101.325 kPa at the sea, 74.7 kPa at 2500 m); a plant that is
+    set to run below it says so, and so does one that states no cut-out."""
+    found = safety_figures(plant(altitude=altitude), "one").found["low_pressure_trip_lowest"]
+    assert found.value == pytest.approx({"0 m": 101325.0, "2500 m": 74690.0}[altitude], rel=1e-3)
+    low = plant(altitude=altitude, controls="low_pressure_cut_out: -0.2 bar g, low_pressure_cut_in: 0.5 bar g")
+    assert "below the pressure of the air" in safety_figures(low, "one").not_calculated["low_pressure_trip_lowest"]
+    none = plant(altitude=altitude, controls="high_pressure_limit: 22 bar g")
+    assert "not stated" in safety_figures(none, "one").not_calculated["low_pressure_trip_lowest"]
+
+
 @pytest.mark.parametrize(
     ("summer", "high", "low"),
     [("32 °C", 55, 27), ("32.1 °C", 59, 33), ("38 °C", 59, 33), ("43 °C", 63, 38), ("55 °C", 67, 38)],

@@ -127,6 +127,33 @@ def below_atmosphere(facts: SystemFacts) -> Iterator[Remark]:
         return
 
 
+def cut_out_below_the_air(facts: SystemFacts) -> Iterator[Remark]:
+    """A low-pressure cut-out below the barometric pressure of the site, the refrigerant flammable.
+
+    Source: definition: before it acts the low side draws in air through any leak, and the compressor squeezes a mixture
+    that can burn. An error, but for a plant that is expected to run below the air by design.
+    """
+    from commission.safety import substance_of
+
+    setting, fluid = facts.system.controls.low_pressure_cut_out, facts.refrigerant
+    barometric = facts.plant.loaded.barometric_pressure
+    if setting is None or fluid is None or not substance_of(fluid).flammable or facts.absolute(setting) >= barometric:
+        return
+    expected = facts.expected("design", "suction_pressure")
+    designed = expected is not None and expected.value < barometric
+    yield Remark(
+        "warning" if designed else "error",
+        facts.path("controls", "low_pressure_cut_out"),
+        f"The low-pressure cut-out of {facts.title} acts only when the low side has drawn in air, and {fluid.name} burns.",
+        (
+            facts.plant.figure("low-pressure cut-out", facts.absolute(setting), Kind.PRESSURE),
+            facts.plant.figure("barometric pressure of the site", barometric, Kind.PRESSURE_DIFFERENCE),
+        ),
+        "Set it above the pressure of the air; where the plant runs below it by design, let the supplier say how air is "
+        "kept out and noticed.",
+    )
+
+
 def suction_limit(facts: SystemFacts) -> Iterator[Remark]:
     """A valve (MOP) or crankcase pressure regulator set below the suction pressure of the design condition.
 
