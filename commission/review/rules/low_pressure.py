@@ -144,13 +144,13 @@ def cut_out_below_the_air(facts: SystemFacts) -> Iterator[Remark]:
     yield Remark(
         "warning" if designed else "error",
         facts.path("controls", "low_pressure_cut_out"),
-        f"The low-pressure cut-out of {facts.title} acts only when the low side has drawn in air, and {fluid.name} burns.",
+        f"The low-pressure cut-out of {facts.title} acts only after air is drawn in, and {fluid.name} burns.",
         (
             facts.plant.figure("low-pressure cut-out", facts.absolute(setting), Kind.PRESSURE),
             facts.plant.figure("barometric pressure of the site", barometric, Kind.PRESSURE_DIFFERENCE),
         ),
-        "Set it above the pressure of the air; where the plant runs below it by design, let the supplier say how air is "
-        "kept out and noticed.",
+        "Set it above the pressure of the air; where the plant runs below it by design, let the supplier say how air "
+        "is kept out and noticed.",
     )
 
 
