@@ -54,9 +54,10 @@ def make_sheet(
     """Freeze expectations and guarantees over a range of conditions.
 
     `ranges` gives for each condition of the range its grid values in SI, ascending; all other conditions are held at
-    their value in `held` (SI), or else as designed. `keys` chooses the expectations (all that the model gives, where
-    None). The largest error of reading between the points is found at the middle of every cell and frozen with each
-    target.
+    their value in `held` (SI), or else as designed. These are as stated: how far the plant may lie from that is in the
+    uncertainties, and what changes in them where one is read on the day is frozen too. `keys` chooses the expectations
+    (all that the model gives, where None). The largest error of reading between the points is found at the middle of
+    every cell and frozen with each target.
 
     Raises:
         InputError: a condition that this system does not have, no value, or too many points.
@@ -66,11 +67,12 @@ def make_sheet(
     there = model.predict(held).conditions if held else model.rated_condition
     held = {k: v for k, v in there.items() if k not in ranges}
     where, between = points(axes), middles(axes)
-    predicted = [model.predict({**held, **at}) for at in where]
-    middle = [model.predict({**held, **at}) for at in between]
+    predicted = _predicted(model, held, where)
+    middle = _predicted(model, held, between)
     wanted = [k for k in (keys or predicted[0].expected) if all(k in p.expected for p in (*predicted, *middle))]
     centre = between[len(between) // 2]
-    targets = _expected_targets(loaded, model, axes, predicted, middle, between, wanted, {**held, **centre})
+    read = {k: _predicted(model, held, where, k) for k in model.may_differ if k in held}
+    targets = _expected_targets(loaded, model, axes, predicted, read, middle, between, wanted, {**held, **centre})
     targets += _guarantee_targets(loaded, model, held, axes, where, between, centre)
     used = dict.fromkeys(name for t in targets for name in t.instruments)
     return TestSheet(
@@ -88,6 +90,20 @@ def make_sheet(
         steadiness,
         live(loaded, model, middle[len(middle) // 2]).frozen(),
     )
+
+
+def _predicted(
+    model: SystemModel, held: Mapping[str, float], where: Sequence[Mapping[str, float]], read: str = ""
+) -> list[Prediction]:
+    """Predictions at the points; what is held is as stated, but for the condition `read`."""
+    unread = [k for k in held if k != read]
+    return [model.predict({**held, **at}, as_stated=unread) for at in where]
+
+
+def _gained(unread: Sequence[float], read: Mapping[str, Sequence[float]]) -> dict[str, tuple[float, ...]]:
+    """What the variance of each point gains where a held condition is read; from standard uncertainties."""
+    gained = {k: tuple(one**2 - u**2 for one, u in zip(ones, unread, strict=True)) for k, ones in read.items()}
+    return {k: changes for k, changes in gained.items() if any(changes)}
 
 
 def versions() -> dict[str, str]:
@@ -139,6 +155,7 @@ def _expected_targets(
     model: SystemModel,
     axes: tuple[Axis, ...],
     predicted: Sequence[Prediction],
+    read: Mapping[str, Sequence[Prediction]],
     middle: Sequence[Prediction],
     between: Sequence[Mapping[str, float]],
     wanted: Sequence[str],
@@ -148,16 +165,23 @@ def _expected_targets(
     targets = []
     for key in wanted:
         values = tuple(p.expected[key].value for p in predicted)
-        uncertainties = tuple(p.expected[key].uncertainty or 0.0 for p in predicted)
+        uncertainties = _uncertainties(predicted, key)
+        gained = _gained(uncertainties, {k: _uncertainties(ones, key) for k, ones in read.items()})
         missed = _missed(axes, values, between, [p.expected[key].value for p in middle])
         instruments, reading = _instrument_for(loaded, model, key, values[len(values) // 2])
         held = {a.key for a in axes}
         slopes = {k: s for k, s in sensitivities.get(key, {}).items() if s and k not in held}
         method = predicted[0].expected[key].method
         targets.append(
-            Target(key, "expectation", method, values, uncertainties, missed, instruments, reading, None, slopes)
+            Target(
+                key, "expectation", method, values, uncertainties, missed, instruments, reading, None, slopes, gained
+            )
         )
     return targets
+
+
+def _uncertainties(predicted: Sequence[Prediction], key: str) -> tuple[float, ...]:
+    return tuple(p.expected[key].uncertainty or 0.0 if key in p.expected else 0.0 for p in predicted)
 
 
 def _guarantee_targets(
@@ -183,27 +207,54 @@ def _guarantee_targets(
         carried = [at(point) for point in where]
         values = tuple(c.value for c in carried)
         uncertainties = tuple(c.budget.standard for c in carried)
+        gained = _gained(uncertainties, _carried_with_one_read(at, terms, model, held, where))
         missed = _missed(axes, values, between, [at(point).value for point in between])
         names = _route_instruments(loaded, model, terms, {**held, **centre})
         slopes = _held_slopes(at, terms, held, centre)
         method = carried[0].explained.method
         reading = proved.verdict.measured.budget.standard if proved.verdict.measured else None
         targets.append(
-            Target(terms.quantity, "guarantee", method, values, uncertainties, missed, names, reading, terms, slopes)
+            Target(
+                terms.quantity,
+                "guarantee",
+                method,
+                values,
+                uncertainties,
+                missed,
+                names,
+                reading,
+                terms,
+                slopes,
+                gained,
+            )
         )
     return targets
 
 
+def _carried_with_one_read(
+    at: Callable[..., Carried],
+    terms: Terms,
+    model: SystemModel,
+    held: Mapping[str, float],
+    where: Sequence[Mapping[str, float]],
+) -> dict[str, list[float]]:
+    """By held condition, the standard uncertainties of a carried guarantee where that condition is read."""
+    keys = [k for k in model.may_differ if k in held] if terms.carried_by == "design model" else []
+    return {k: [at(point, read=k).budget.standard for point in where] for k in keys}
+
+
 def _carrier(
     terms: Terms, model: SystemModel, loaded: LoadedPlant, held: Mapping[str, float]
-) -> Callable[[Mapping[str, float]], Carried]:
+) -> Callable[..., Carried]:
+    """Carries a guarantee to a point; what is held is as stated, but for the condition `read`."""
     points_of_supplier = loaded.system(model.system_id).rated_points
     known = all(known_to(model, k) for k in terms.at)
     there = model.predict(dict(terms.at)) if known else None
 
-    def at(point: Mapping[str, float]) -> Carried:
+    def at(point: Mapping[str, float], read: str = "") -> Carried:
         conditions = {k: Measured(k, v) for k, v in {**held, **point}.items()}
-        return carry(terms, conditions, model, points_of_supplier, there)
+        unread = [k for k in held if k != read]
+        return carry(terms, conditions, model, points_of_supplier, there, unread)
 
     return at
 

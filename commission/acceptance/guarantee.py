@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
@@ -121,24 +121,30 @@ def carry(
     model: SystemModel,
     rated_points: Sequence[RatedPoint] = (),
     there: Prediction | None = None,
+    unread: Collection[str] = (),
 ) -> Carried:
     """The guaranteed value at the measured condition, by the way that the contract states.
 
-    `there` is the prediction at the condition of the guarantee, for a caller that already has it.
+    `there` is the prediction at the condition of the guarantee, for a caller that already has it. `unread` names
+    those of the conditions that nobody reads.
 
     Raises:
         NotCalculatedError: the model has no solution there, the table does not reach, or the day is not the stated
             condition.
     """
     if terms.carried_by == "design model":
-        return by_model(terms, conditions, model, there)
+        return by_model(terms, conditions, model, there, unread)
     if terms.carried_by == "supplier's table":
         return by_table(terms, conditions, rated_points, model.facts.pressure)
     return as_stated(terms, conditions, model)
 
 
 def by_model(
-    terms: Terms, conditions: Mapping[str, Measured], model: SystemModel, there: Prediction | None = None
+    terms: Terms,
+    conditions: Mapping[str, Measured],
+    model: SystemModel,
+    there: Prediction | None = None,
+    unread: Collection[str] = (),
 ) -> Carried:
     """The guaranteed value times the ratio of the design model at the day's and at the guarantee's condition.
 
@@ -153,7 +159,7 @@ def by_model(
             label = NOMENCLATURE[condition].label.lower()
             raise NotCalculatedError(f"the design model does not depend on {label}, which the guarantee states")
     there = there or model.predict(dict(terms.at))
-    day = model.predict(day_values)
+    day = model.predict(day_values, as_stated=unread)
     for prediction in (there, day):
         if key not in prediction.expected:
             raise NotCalculatedError(prediction.not_calculated.get(key, f"the model does not calculate {key}"))

@@ -32,10 +32,11 @@ class Target:
     """One line of the sheet: the values at all points of the grid, in row order (the last axis runs fastest), in SI.
 
     `uncertainties` are standard uncertainties of the values themselves (model parts, or what carrying a guarantee
-    adds); `between` is the largest error of reading between the points, found at the middles of the cells;
-    `reading_uncertainty` is the standard uncertainty of a reading with the `instruments` at the middle of the range,
-    None where no instrument was named. `terms` belong to a guarantee. `slopes` are the changes per unit of the
-    conditions that the sheet holds at one value, for a day on which they are a little different.
+    adds), where nobody reads the conditions that the sheet holds at one value; `when_read` is by such a condition what
+    the variances gain where it is read. `between` is the largest error of reading between the points, found at the
+    middles of the cells; `reading_uncertainty` is the standard uncertainty of a reading with the `instruments` at the
+    middle of the range, None where no instrument was named. `terms` belong to a guarantee. `slopes` are the changes per
+    unit of the conditions that the sheet holds at one value, for a day on which they are a little different.
     """
 
     key: str
@@ -48,6 +49,7 @@ class Target:
     reading_uncertainty: float | None = None
     terms: Terms | None = None
     slopes: Mapping[str, float] = field(default_factory=dict)
+    when_read: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
 
 
 @dataclass(frozen=True, slots=True)
@@ -94,14 +96,15 @@ class TestSheet:
     def value_at(self, target: Target, conditions: Mapping[str, Measured]) -> tuple[float, Budget]:
         """A target at the measured condition, read between the points, with its budget.
 
-        A condition that the sheet holds at one value and that was read moves it along the frozen slope.
+        A condition that the sheet holds at one value and that was read moves it along the frozen slope, and is then
+        known: only its reading is uncertain.
 
         Raises:
             NotCalculatedError: the day lies outside the range that was agreed, or a condition was not read.
         """
         at = {k: m.value for k, m in conditions.items()}
         value, slopes = interpolate(self.axes, target.values, at)
-        own, _ = interpolate(self.axes, target.uncertainties, at)
+        own = self._own(target, at)
         parts = [
             Component("frozen target", own, source="the frozen test sheet", of=target.key,
                       remedy="test nearer to the condition of the guarantee" if target.terms else ""),
@@ -114,6 +117,12 @@ class TestSheet:
                 slopes[key] = slope
         through = [conditions[k].budget.scaled(s) for k, s in slopes.items() if s]
         return value, combine(Budget(tuple(p for p in parts if p.value)), *through)
+
+    def _own(self, target: Target, at: Mapping[str, float]) -> float:
+        """Standard uncertainty of the target itself, with the conditions that were read."""
+        own, _ = interpolate(self.axes, target.uncertainties, at)
+        gained = sum(interpolate(self.axes, gains, at)[0] for key, gains in target.when_read.items() if key in at)
+        return math.sqrt(max(0.0, own**2 + gained))
 
     def carried(self, target: Target, conditions: Mapping[str, Measured]) -> Carried:
         """The guaranteed value of a target on the day.

@@ -83,6 +83,8 @@ def _target_out(target: Target) -> dict[str, Any]:
     }
     if target.reading_uncertainty is not None:
         data["reading_standard_uncertainty"] = _size(target.reading_uncertainty)
+    if target.when_read:
+        data["variances_gained_when_read"] = {k: [_size(g) for g in gains] for k, gains in target.when_read.items()}
     if target.terms is not None:
         data["guarantee"] = _terms_out(target.terms)
     return data
@@ -182,7 +184,9 @@ def _target(data: Mapping[str, Any], count: int) -> Target:
     kind = NOMENCLATURE[key].kind
     values = tuple(_in(v, kind) for v in data["values"])
     uncertainties = tuple(float(u) for u in data["standard_uncertainties"])
-    if len(values) != count or len(uncertainties) != count:
+    gained = data.get("variances_gained_when_read", {})
+    when_read = {str(k): tuple(float(g) for g in gains) for k, gains in gained.items()}
+    if any(len(column) != count for column in (values, uncertainties, *when_read.values())):
         raise ValueError(f"{key} has not one value for each point of the grid")
     return Target(
         key,
@@ -195,6 +199,7 @@ def _target(data: Mapping[str, Any], count: int) -> Target:
         _maybe(float, data.get("reading_standard_uncertainty")),
         _terms(key, data["guarantee"]) if "guarantee" in data else None,
         {str(k): float(v) for k, v in data["slopes"].items()},
+        when_read,
     )
 
 

@@ -148,5 +148,6 @@ def far_point(grid: Grid | None, rated: Prediction) -> Prediction:
     return max(found, key=lambda p: abs(p.conditions[grid.key] - at))
 
 
-def _far_condition(grid: Grid | None, rated: Prediction) -> Mapping[str, float]:
-    return far_point(grid, rated).conditions
+def _far_condition(grid: Grid | None, rated: Prediction) -> Mapping[str, float] | None:
+    far = far_point(grid, rated)
+    return None if grid is None or far is rated else {grid.key: far.conditions[grid.key]}

@@ -32,7 +32,8 @@ class GridPoint:
 @dataclass(frozen=True, slots=True)
 class Grid:
     """Expected readings along one condition; all other conditions are at `fixed`, but for those that are `led` by it
-    through the weather curve.
+    through the weather curve. A table knows of the day only what varies along it: what is `fixed` is as stated, and how
+    far the plant may lie from that is in the uncertainties.
 
     `key` is the condition that varies, `title` its name as a person says it, `points` every 5 K (the printed table)
     and `line` every 2.5 K (the charts), in ascending order; temperatures in K.
@@ -101,7 +102,7 @@ def temperatures(loaded: LoadedPlant, key: str, model: SystemModel) -> tuple[flo
 
 
 def _walk(model: SystemModel, key: str, values: tuple[float, ...]) -> tuple[GridPoint, ...]:
-    found = model.grid(key, values, model.along(key))
+    found = model.grid(key, values)
     return tuple(
         GridPoint(t, None, p.problems[0].message) if isinstance(p, NotCalculatedError) else GridPoint(t, p)
         for t, p in zip(values, found, strict=True)

@@ -70,11 +70,8 @@ def _at(plant: PlantData, data: SystemData, start: float, air: float | None, tit
     from commission.prediction import heat_up
 
     assert data.model is not None
-    conditions = dict(data.model.rated_condition)
-    if air is not None:
-        conditions[_AIR] = air
     try:
-        found = heat_up(data.model, start, None, conditions)
+        found = heat_up(data.model, start, None, None if air is None else {_AIR: air})
     except NotCalculatedError as error:
         return HeatingUp(title, (), error.problems[0].message, None, ())
     values = [(found.time, "the machine alone"), (found.energy, "the machine alone")]

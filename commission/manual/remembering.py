@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import fields
 from typing import TYPE_CHECKING, ClassVar
 
@@ -24,11 +24,13 @@ def remembering(model: SystemModel) -> SystemModel:
 
         remembers: ClassVar[bool] = True
 
-        def predict(self, conditions: Mapping[str, float] | None = None) -> Prediction:
+        def predict(
+            self, conditions: Mapping[str, float] | None = None, *, as_stated: Collection[str] = ()
+        ) -> Prediction:
             """As the model's own."""
-            key = _key(conditions)
+            key = _key(conditions), frozenset(as_stated)
             if key not in predictions:
-                predictions[key] = super().predict(conditions)
+                predictions[key] = super().predict(conditions, as_stated=as_stated)
             return predictions[key]
 
         def grid(
@@ -38,7 +40,7 @@ def remembering(model: SystemModel) -> SystemModel:
             found = super().grid(key, values, others)
             for value, prediction in zip(values, found, strict=True):
                 if not isinstance(prediction, NotCalculatedError):
-                    predictions.setdefault(_key({**(others or {}), key: value}), prediction)
+                    predictions.setdefault((_key({**(others or {}), key: value}), frozenset()), prediction)
             return found
 
         def sensitivities(self, conditions: Mapping[str, float] | None = None) -> dict[str, dict[str, float]]:

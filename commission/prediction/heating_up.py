@@ -222,8 +222,9 @@ def _element_below(
     start, heat = sum(cool) / len(cool), sum(s.heat for s in steps)
     lost = sum(s.loss * s.heat for s in steps) / heat
     inlets = [start + (goal - start) * share for share in DRAWN]
-    given = {**steps[0].at.conditions}
-    at = [_Step(heat, lost, model.predict({**given, "heat_sink_inlet_temperature": t})) for t in inlets]
+    given, unread = steps[0].at.conditions, steps[0].at.as_stated
+    asked = [{**given, "heat_sink_inlet_temperature": t} for t in inlets]
+    at = [_Step(heat, lost, model.predict(conditions, as_stated=unread)) for conditions in asked]
 
     def calculate(cause: str | None, volume: float) -> tuple[float, float]:
         figures = [(s.power("heating_capacity", cause), s.power("power_input", cause)) for s in at]

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
 
 from commission.description import Assumption, LoadedPlant
@@ -40,10 +40,11 @@ class Prediction:
     """What one system should read at one condition. All values SI, pressures absolute.
 
     `filled` lists the conditions that were not given and taken from the rated one; a flow temperature that was taken
-    from the weather curve is not among them but in a sentence of `warnings`. `parts` holds, for each expected
-    key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root sum of
-    squares. `not_calculated` gives the reason for each quantity that has no value. `sink_flow_share` is the mean
-    flow of the heat sink that the head-pressure control leaves, over that of the conditions. `held_off` are the
+    from the weather curve is not among them but in a sentence of `warnings`. `as_stated` lists the conditions that
+    nobody read and that a plant may miss: their assumed departure is in the uncertainties. `parts` holds, for each
+    expected key, the signed change by one standard uncertainty of each cause; `Explained.uncertainty` is their root
+    sum of squares. `not_calculated` gives the reason for each quantity that has no value. `sink_flow_share` is the
+    mean flow of the heat sink that the head-pressure control leaves, over that of the conditions. `held_off` are the
     settings that are calculated at another value than the stated one.
     """
 
@@ -58,6 +59,7 @@ class Prediction:
     parts: Mapping[str, Mapping[str, float]]
     sink_flow_share: float = 1.0
     held_off: tuple[HeldOff, ...] = ()
+    as_stated: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -102,14 +104,25 @@ class SystemModel:
         led = followers(self.facts, self.condition_axes, key)
         return {k: v for k, v in self.rated_condition.items() if k != key and k not in led}
 
-    def predict(self, conditions: Mapping[str, float] | None = None) -> Prediction:
+    @property
+    def may_differ(self) -> tuple[str, ...]:
+        """The conditions of which an assumption says how far the plant may lie from what is stated: flows, humidity."""
+        own = self.fit.plan.own_conditions
+        moved = {k for v in self.fit.variants for k, x in v.plan.own_conditions.items() if x != own[k]}
+        return tuple(k for k in self.condition_axes if k in moved and own[k] > 0)
+
+    def predict(self, conditions: Mapping[str, float] | None = None, *, as_stated: Collection[str] = ()) -> Prediction:
         """Expected values at a condition (keys of the nomenclature, SI); None means the rated condition.
+
+        What is given counts as read on the day, and so as known. What is not given is as stated, and so are those of
+        the given ones that `as_stated` names: how far the plant may lie from that (`may_differ`) is in the
+        uncertainties.
 
         Raises:
             InputError: a key that is no condition of this system.
             NotCalculatedError: the machine has no balance there; the message says why.
         """
-        return self._predict(conditions, _Starts())
+        return self._predict(conditions, _Starts(), as_stated)
 
     def grid(
         self, key: str, values: Sequence[float], others: Mapping[str, float] | None = None
@@ -192,7 +205,7 @@ class SystemModel:
         whole, filled, _ = self._complete(conditions)
         nominal, start = self._solved(whole)
         effects: dict[str, dict[str, float]] = {}
-        for cause, change, _ in self._changes(whole, filled, nominal, start, _Starts()):
+        for cause, change, _ in self._changes(whole, self._unread(filled), nominal, start, _Starts()):
             if cause != SCATTER:
                 effects[cause] = change
         return effects
@@ -255,12 +268,16 @@ class SystemModel:
         point = plan.machine.operate(around, start.balance if start is not None else None)
         return expected_values(self.facts, plan, around, point), point
 
+    def _unread(self, keys: Collection[str]) -> tuple[str, ...]:
+        """Those of the conditions nobody read that the plant may miss."""
+        return tuple(k for k in self.may_differ if k in keys)
+
     def _changes(
-        self, whole: Mapping[str, float], filled: Sequence[str], nominal: Found, start: OperatingPoint, starts: _Starts
+        self, whole: Mapping[str, float], unread: Sequence[str], nominal: Found, start: OperatingPoint, starts: _Starts
     ) -> list[tuple[str, dict[str, float], OperatingPoint]]:
-        """Change of every value by each cause. What was filled in, and not measured, follows each variant's own."""
+        """Change of every value by each cause. What nobody read follows each variant's own."""
         changes = []
-        own = {k: v for k, v in self.fit.plan.own_conditions.items() if k in filled and v > 0}
+        own = {k: self.fit.plan.own_conditions[k] for k in unread}
         for n, variant in enumerate(self.fit.variants):
             asked = {**whole, **{k: whole[k] * variant.plan.own_conditions[k] / v for k, v in own.items()}}
             try:
@@ -279,12 +296,15 @@ class SystemModel:
         return f"the assumption '{self.assumptions[cause].title}'" if cause in self.assumptions else f"the {cause}"
 
     @in_words
-    def _predict(self, conditions: Mapping[str, float] | None, starts: _Starts) -> Prediction:
+    def _predict(
+        self, conditions: Mapping[str, float] | None, starts: _Starts, as_stated: Collection[str] = ()
+    ) -> Prediction:
         whole, filled, outside = self._complete(conditions)
+        unread = self._unread({*filled, *as_stated})
         nominal, point = self._solved(whole, starts.nominal)
         starts.nominal = point
         parts: dict[str, dict[str, float]] = {key: {} for key in nominal.values}
-        for cause, change, _ in self._changes(whole, filled, nominal, point, starts):
+        for cause, change, _ in self._changes(whole, unread, nominal, point, starts):
             for key, amount in change.items():
                 if abs(amount) > ROUNDING * abs(nominal.values[key]):
                     _add_part(parts[key], cause, amount)
@@ -312,6 +332,7 @@ class SystemModel:
             parts,
             point.balance.sink_flow_share,
             held_off(self.facts, self.fit),
+            unread,
         )
 
     def _own_parts(self, nominal: Found, parts: dict[str, dict[str, float]]) -> None:

@@ -7,7 +7,7 @@ from pathlib import Path
 
 import pytest
 
-from commission.acceptance import Measured, SheetError, TestSheet, grid_of, judge, make_sheet, read_sheet
+from commission.acceptance import Budget, Measured, SheetError, TestSheet, grid_of, judge, make_sheet, read_sheet
 from commission.acceptance.sheet import digest_of
 from commission.description import LoadedPlant
 from commission.errors import InputError, NotCalculatedError
@@ -214,3 +214,45 @@ def test_conditions_of_the_forecast_are_held(cold_room: LoadedPlant, cold_room_m
         for at, value in zip((295.15, 300.15), target.values, strict=True):
             there = cold_room_model.predict({**made.conditions, SINK: at})
             assert value == pytest.approx(there.expected[target.key].value, rel=1e-6)
+
+
+FLOW = "heat_sink_flow"
+
+
+def own_part(budget: Budget) -> float:
+    """The standard uncertainty that a target has of itself."""
+    return sum(c.value for c in budget.components if c.name == "frozen target")
+
+
+def test_a_flow_nobody_reads_is_as_stated(sheet: TestSheet, cold_room_model: SystemModel) -> None:
+    """What the sheet holds at one value is as stated: at its points the bands are those of a plain prediction."""
+    day = at(303.15, 273.15)
+    plain = cold_room_model.predict({k: m.value for k, m in day.items()})
+    assert FLOW in plain.as_stated
+    for target in sheet.targets_for("expectation"):
+        own = own_part(sheet.value_at(target, day)[1])
+        assert own == pytest.approx(plain.expected[target.key].uncertainty, rel=1e-9), target.key
+
+
+def test_a_flow_that_was_read_is_known(sheet: TestSheet, cold_room_model: SystemModel) -> None:
+    """With a reading of the air flow its departure is out of the budget, as it is without a sheet; it moves the outlet
+    of the condenser most."""
+    day = at(303.15, 273.15)
+    rated = cold_room_model.rated_condition[FLOW]
+    known = cold_room_model.predict({**{k: m.value for k, m in day.items()}, FLOW: rated})
+    assert FLOW not in known.as_stated
+    for target in sheet.targets_for("expectation"):
+        _, budget = sheet.value_at(target, {**day, FLOW: Measured(FLOW, rated)})
+        assert own_part(budget) == pytest.approx(known.expected[target.key].uncertainty, rel=1e-6), target.key
+    outlet = next(t for t in sheet.targets if t.key == "heat_sink_outlet_temperature")
+    unread, read = (sheet.value_at(outlet, d)[1].standard for d in (day, {**day, FLOW: Measured(FLOW, rated)}))
+    assert read < 0.7 * unread
+
+
+def test_a_guarantee_is_carried_with_the_flows_as_stated(sheet: TestSheet) -> None:
+    """A departed flow is the same at both ends of the carrying: at the guarantee's own condition it leaves no doubt."""
+    target = next(t for t in sheet.targets_for("guarantee") if t.key == "cooling_capacity")
+    _, budget = sheet.value_at(target, at(305.15, 275.15))
+    own = sheet.value_at(target, at(303.15, 273.15))[1]
+    assert budget.standard < 0.02 * target.values[0]
+    assert own.standard < 0.02 * target.values[0]
