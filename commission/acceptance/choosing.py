@@ -40,6 +40,8 @@ FROM_PRESSURES = (
     "pressure_ratio",
     "evaporator_temperature_difference",
     "condenser_temperature_difference",
+    "evaporator_approach",
+    "condenser_approach",
 )
 """Readings that are worked out from a gauge."""
 NO_PORTS = "the unit is factory sealed and has no ports for gauges"

@@ -116,6 +116,8 @@ def derive(
         if one is not None:
             keep(one)
     for key, plus, minus in _DIFFERENCES:
+        if key in _OF_LIQUIDS and (prediction is None or key not in prediction.expected):
+            continue
         if plus in have and minus in have:
             inputs = {"plus": have[plus], "minus": have[minus]}
             keep(explained(propagate(key, lambda plus, minus: plus - minus, inputs), "difference_of_readings", inputs))
@@ -128,9 +130,15 @@ def derive(
 _DIFFERENCES = (
     ("evaporator_temperature_difference", "heat_source_inlet_temperature", "evaporating_temperature"),
     ("condenser_temperature_difference", "condensing_temperature", "heat_sink_inlet_temperature"),
+    ("evaporator_approach", "heat_source_outlet_temperature", "evaporating_temperature"),
+    ("condenser_approach", "condensing_temperature", "heat_sink_outlet_temperature"),
     ("heat_source_temperature_change", "heat_source_inlet_temperature", "heat_source_outlet_temperature"),
     ("heat_sink_temperature_change", "heat_sink_outlet_temperature", "heat_sink_inlet_temperature"),
 )
+
+
+_OF_LIQUIDS = frozenset({"evaporator_approach", "condenser_approach"})
+"""Differences to a leaving medium that say something of liquids only."""
 
 
 def _superheat(

@@ -14,7 +14,7 @@ from commission.description.model import Medium
 from commission.errors import NotCalculatedError
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_bands import TWO_SIDED, Bands, make_bands
-from commission.manual.live_plan import DERIVED, LINE_LOSSES, LivePlan
+from commission.manual.live_plan import APPROACHES, DERIVED, LINE_LOSSES, LivePlan
 from commission.manual.live_series import Asked, LiveTable, along_the_way, grid_axes, make_table
 from commission.manual.showing import label_of, unit_of
 from commission.quantities import NOMENCLATURE, Display, Kind, Reference
@@ -83,7 +83,8 @@ def live_data(
 
     instruments = plant.loaded.plant.instruments
     judged = None if expected is None else {k for bands in expected["bands"] for k in bands}
-    derived = [k for k in DERIVED if k not in plan.readings and (judged is None or k in judged)]
+    air = {k for k, side in APPROACHES.items() if getattr(data.system, side).medium == "air"}
+    derived = [k for k in DERIVED if k not in plan.readings and (k not in air if judged is None else k in judged)]
     keys = [*plan.conditions, *plan.readings, *DERIVED, "barometric_pressure"]
     sheets = [f"sheets/{n}.yaml" for n, s in plant.sheets.items() if not isinstance(s, str) and s.system == data.id]
     return {

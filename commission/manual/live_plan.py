@@ -15,11 +15,14 @@ if TYPE_CHECKING:
 MOST_AXES = 3
 SPEED = "compressor_speed"
 DERIVED = (
-    "evaporating_temperature", "evaporator_temperature_difference", "compressor_superheat", "condensing_temperature",
-    "condenser_temperature_difference", "subcooling", "heat_source_temperature_change", "heat_sink_temperature_change",
-    "pressure_ratio", "cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop",
+    "evaporating_temperature", "evaporator_temperature_difference", "compressor_superheat",
+    "condensing_temperature", "condenser_temperature_difference", "evaporator_approach", "condenser_approach",
+    "subcooling", "heat_source_temperature_change", "heat_sink_temperature_change", "pressure_ratio",
+    "cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop",
 )  # fmt: skip
 """What the page works out of the readings."""
+APPROACHES = {"evaporator_approach": "heat_source", "condenser_approach": "heat_sink"}
+"""What is worked out where this medium is a liquid."""
 USUAL = (
     "heat_source_outlet_temperature", "heat_sink_outlet_temperature", "suction_pressure", "discharge_pressure",
     "suction_temperature", "discharge_temperature", "liquid_temperature", "power_input", "current",
@@ -36,6 +39,8 @@ HOW = {
     "compressor_superheat": "suction line minus saturation at the low-side gauge",
     "condensing_temperature": "saturation at the high-side gauge, as it is in the condenser",
     "condenser_temperature_difference": "condensing minus sink inlet",
+    "evaporator_approach": "source outlet minus evaporating",
+    "condenser_approach": "condensing minus sink outlet",
     "subcooling": "saturation at the high-side gauge minus liquid line",
     "heat_source_temperature_change": "inlet minus outlet",
     "heat_sink_temperature_change": "outlet minus inlet",

@@ -19,9 +19,9 @@ if TYPE_CHECKING:
 
 SHEET_KEYS = (
     "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
-    "evaporator_temperature_difference", "compressor_superheat", "condenser_temperature_difference", "subcooling",
-    "heat_source_outlet_temperature", "heat_source_outlet_wet_bulb", "heat_sink_outlet_temperature",
-    "power_input", "current",
+    "evaporator_temperature_difference", "compressor_superheat", "condenser_temperature_difference",
+    "condenser_approach", "evaporator_approach", "subcooling", "heat_source_outlet_temperature",
+    "heat_source_outlet_wet_bulb", "heat_sink_outlet_temperature", "power_input", "current",
 )  # fmt: skip
 """Expectations that are printed on a sheet; a frozen sheet holds all of them."""
 

@@ -236,7 +236,8 @@ GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
         "As engineers think",
         (
             "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
-            "condensing_temperature", "condenser_temperature_difference", "subcooling", "gas_cooler_approach",
+            "evaporator_approach", "condensing_temperature", "condenser_temperature_difference", "condenser_approach",
+            "subcooling", "gas_cooler_approach",
             "pressure_ratio", "heat_source_temperature_change", "heat_sink_temperature_change",
         ),
     ),

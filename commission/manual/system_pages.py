@@ -145,10 +145,10 @@ def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[
 GRID_KEYS = (
     "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
     "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
-    "condensing_temperature", "condenser_temperature_difference", "subcooling", "heat_source_outlet_temperature",
-    "heat_source_outlet_wet_bulb",
-    "heat_sink_outlet_temperature", "power_input", "current", "cooling_capacity", "heating_capacity",
-    "heating_capacity_with_defrosts", "cooling_cop", "heating_cop", "heating_cop_with_defrosts",
+    "evaporator_approach", "condensing_temperature", "condenser_temperature_difference", "condenser_approach",
+    "subcooling", "heat_source_outlet_temperature", "heat_source_outlet_wet_bulb", "heat_sink_inlet_temperature",
+    "heat_sink_outlet_temperature", "heat_sink_flow", "power_input", "current", "cooling_capacity",
+    "heating_capacity", "heating_capacity_with_defrosts", "cooling_cop", "heating_cop", "heating_cop_with_defrosts",
 )  # fmt: skip
 
 

@@ -18,7 +18,8 @@ if TYPE_CHECKING:
 
 WORKED_OUT = (
     "evaporator_temperature_difference", "superheat", "compressor_superheat", "condenser_temperature_difference",
-    "subcooling", "gas_cooler_approach", "heat_source_temperature_change", "heat_sink_temperature_change",
+    "evaporator_approach", "condenser_approach", "subcooling", "gas_cooler_approach",
+    "heat_source_temperature_change", "heat_sink_temperature_change",
 )  # fmt: skip
 """What follows from the readings: differences, which a pencil can do."""
 EVAPORATOR_OUTLET = "Evaporator outlet pipe temperature"
@@ -42,6 +43,8 @@ def how(key: str, refrigerant: Refrigerant | None, predictions: Sequence[Predict
         "superheat": f"evaporator outlet minus evaporating: {evaporating}",
         "compressor_superheat": f"suction line minus {dew} at the {low} gauge",
         "condenser_temperature_difference": f"condensing is {condensing}",
+        "evaporator_approach": f"source outlet minus evaporating: {evaporating}",
+        "condenser_approach": f"condensing minus sink outlet: {condensing}",
         "subcooling": f"{before_valve}, minus liquid line",
         "gas_cooler_approach": "gas-cooler outlet minus sink inlet",
         "heat_source_temperature_change": "inlet minus outlet",
@@ -74,9 +77,9 @@ def _losses(key: str, refrigerant: Refrigerant | None, predictions: Sequence[Pre
 def _loss(key: str, refrigerant: Refrigerant, value: Mapping[str, float]) -> list[float]:
     if not set(PRESSURES) <= set(value):
         return []
-    if key in ("evaporator_temperature_difference", "superheat"):
+    if key in ("evaporator_temperature_difference", "evaporator_approach", "superheat"):
         return [value["evaporating_temperature"] - refrigerant.dew_temperature(value["suction_pressure"])]
-    if key == "condenser_temperature_difference" and "condensing_temperature" in value:
+    if key in ("condenser_temperature_difference", "condenser_approach") and "condensing_temperature" in value:
         return [value["condensing_temperature"] - refrigerant.dew_temperature(value["discharge_pressure"])]
     if key == "subcooling" and "subcooling" in value:
         bubble = refrigerant.bubble_temperature(value["discharge_pressure"])

@@ -133,6 +133,7 @@ def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Foun
         air = moist_air(source_out, source.air.p, humidity_ratio=left.humidity_ratio)
         found.values["heat_source_outlet_wet_bulb"] = air.wet_bulb
     found.values["heat_source_temperature_change"] = source_in - source_out
+    _approaches(facts, plan, source_out, sink_out, found)
     for key in ("heat_source", "heat_sink"):
         known = "outlet" if (media.source if key == "heat_source" else media.sink).by_outlet else "inlet"
         del found.values[f"{key}_{known}_temperature"]
@@ -141,6 +142,14 @@ def _media(facts: Facts, plan: Plan, media: Media, balance: Balance, found: Foun
         found.values["heat_sink_flow"] = media.sink.settled(balance.heat_to_sink).volume_flow
     means = entropic_mean(source_in, source_out), entropic_mean(sink_in, sink_out)
     _add(found, "carnot_cop", lambda: _carnot(*means) + (1.0 if heats(facts) else 0.0))
+
+
+def _approaches(facts: Facts, plan: Plan, source_out: float, sink_out: float, found: Found) -> None:
+    """How near saturation comes to a liquid that leaves: what the trade judges a liquid's exchanger by."""
+    if facts.source_liquid is not None:
+        found.values["evaporator_approach"] = source_out - found.values["evaporating_temperature"]
+    if facts.sink_liquid is not None and not isinstance(plan.machine, Transcritical):
+        found.values["condenser_approach"] = found.values["condensing_temperature"] - sink_out
 
 
 def _carnot(source: float, sink: float) -> float:

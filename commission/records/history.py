@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 Baseline = Literal["first accepted test", "first test", "first record"]
 NOT_INDEPENDENT = (
     "pressure_ratio", "evaporator_temperature_difference", "condenser_temperature_difference",
+    "evaporator_approach", "condenser_approach",
     "heat_source_temperature_change", "heat_sink_temperature_change", "heating_capacity", "heating_cop", "carnot_cop",
 )  # fmt: skip
 """Quantities that say again what others say; they have a series, but make no finding of their own."""

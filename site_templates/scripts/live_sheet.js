@@ -12,6 +12,8 @@
     evaporating_temperature: ["suction_pressure"], compressor_superheat: ["suction_pressure", "suction_temperature"],
     evaporator_temperature_difference: ["suction_pressure"], condensing_temperature: ["discharge_pressure"],
     condenser_temperature_difference: ["discharge_pressure"], subcooling: ["discharge_pressure", "liquid_temperature"],
+    evaporator_approach: ["suction_pressure", "heat_source_outlet_temperature"],
+    condenser_approach: ["discharge_pressure", "heat_sink_outlet_temperature"],
     heat_source_temperature_change: ["heat_source_outlet_temperature", "heat_source_inlet_temperature"],
     heat_sink_temperature_change: ["heat_sink_outlet_temperature", "heat_sink_inlet_temperature"],
     pressure_ratio: ["suction_pressure", "discharge_pressure"],

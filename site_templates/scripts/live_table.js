@@ -206,6 +206,8 @@ var commissionLiveTable = function (data) {
     }
     difference("evaporator_temperature_difference", "heat_source_inlet_temperature", "evaporating_temperature");
     difference("condenser_temperature_difference", "condensing_temperature", "heat_sink_inlet_temperature");
+    difference("evaporator_approach", "heat_source_outlet_temperature", "evaporating_temperature");
+    difference("condenser_approach", "condensing_temperature", "heat_sink_outlet_temperature");
     difference("heat_source_temperature_change", "heat_source_inlet_temperature", "heat_source_outlet_temperature");
     difference("heat_sink_temperature_change", "heat_sink_outlet_temperature", "heat_sink_inlet_temperature");
     if (known("suction_pressure", "discharge_pressure")) { keep("pressure_ratio", have.discharge_pressure / have.suction_pressure); }

@@ -21,11 +21,12 @@ from commission.acceptance import (
     read_sheet,
 )
 from commission.acceptance.conditions import DRY, HUMIDITY, WET, day_condition, with_air
+from commission.acceptance.derived import derive
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel, fit
 from tests.acceptance.conftest import write_plant
-from tests.acceptance.visits import visit
+from tests.acceptance.visits import sure, visit
 
 FLOW, RETURN = "heat_sink_outlet_temperature", "heat_sink_inlet_temperature"
 HEAT_PUMP = """
@@ -249,3 +250,19 @@ def test_an_outlet_of_air_does_not_stand_for_its_inlet(cold_room: LoadedPlant, c
     found = evaluate(cold_room, cold_room_model, asked, [*read, Reading("heat_sink_outlet_temperature", 308.0)])
     assert "heat_sink_outlet_temperature" not in found.conditions
     assert found.deviations == ()
+
+
+def test_approaches_of_a_chiller(chiller_model: SystemModel, cold_room_model: SystemModel) -> None:
+    """Of liquids: leaving chilled water stands 2 to 8 K above evaporating, condensing 2 to 8 K above the leaving
+    water (common practice, no source: 3 to 5 K when clean); readings give back what is expected. Air has none."""
+    prediction = chiller_model.predict()
+    expected = {k: e.value for k, e in prediction.expected.items()}
+    read = sure(**{k: v for k, v in expected.items() if not k.endswith("approach")}, **prediction.conditions)
+    found = derive(chiller_model.refrigerant, read, chiller_model, prediction)
+    for key in ("evaporator_approach", "condenser_approach"):
+        assert 2.0 < expected[key] < 8.0
+        assert found[key].measured.value == pytest.approx(expected[key], abs=1e-6)
+    air = cold_room_model.predict()
+    assert not {"evaporator_approach", "condenser_approach"} & set(air.expected)
+    of_air = sure(**{k: e.value for k, e in air.expected.items()}, **air.conditions)
+    assert "condenser_approach" not in derive(cold_room_model.refrigerant, of_air, cold_room_model, air)

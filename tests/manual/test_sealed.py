@@ -41,7 +41,7 @@ def test_the_day_sheet_asks_for_all_that_is_measured(example_folder: Path, ident
     conditions, readings = asked(plant, data)
     assert set(data.system.measured_with) <= {*conditions, *readings}
     assert not set(conditions) & set(readings)
-    assert set(conditions) >= {k for k in data.system.measured_with if k.endswith(("wet_bulb", "humidity"))}
+    assert set(conditions) >= {"heat_source_wet_bulb", "heat_source_relative_humidity"} & set(data.system.measured_with)
 
 
 def test_a_band_that_cannot_be_negative_starts_at_zero() -> None:
