@@ -87,13 +87,15 @@ class Chart:
             nonlocal near
             if (e, x) not in suctions:
                 loss = circuit.machine.suction_line.pressure_loss
-                suctions[e, x] = fluid.vapour(e + x, fluid.dew_pressure(e - loss))
+                dew = fluid.dew(e - loss)
+                suctions[e, x] = fluid.superheated(dew, e + x - dew.T)
             found, near = _compressed(circuit, suctions[e, x], circuit.high_side(e, c)[0], near)
             return found
 
         def gas(e: float, s: float) -> tuple[float, ...]:
-            outlet = circuit.outlet(e, s)
-            return outlet.h, outlet.h - fluid.dew(e).h
+            dew = fluid.dew(e)
+            outlet = fluid.superheated(dew, s)
+            return outlet.h, outlet.h - dew.h
 
         liquid = Series.of(lambda c, s: (circuit.liquid(c, s).h,), (condensing, subcooling), (TERMS, SOME))
         bubble = drive = None

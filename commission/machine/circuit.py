@@ -98,10 +98,15 @@ class Parts:
 
 
 class Cycle(NamedTuple):
-    """The cycle at given temperatures: states at evaporator outlet, suction port and condenser outlet, and heat that
-    the exchanger between gas and liquid passes on, in J/kg."""
+    """The cycle at given temperatures (K), for which see `Circuit.around`: dew point of the evaporator, states at its
+    outlet, at the suction port and before the valve, and heat that the exchanger between gas and liquid passes on, in
+    J/kg."""
 
+    evaporating: float
+    second: float
+    superheat: float
     compression: Compression
+    dew: SaturationState
     outlet: State
     suction: State
     liquid: State
@@ -117,6 +122,11 @@ class Cycle(NamedTuple):
         """Heat in W that the refrigerant gives up in the condenser or gas cooler."""
         return self.compression.flow * (self.compression.discharge_enthalpy - self.liquid.h)
 
+    @property
+    def gas_heat(self) -> float:
+        """Heat in W that superheats the gas inside the evaporator."""
+        return self.compression.flow * (self.outlet.h - self.dew.h)
+
 
 class Circuit(ABC):
     """Refrigerant side of one machine at one condition; keeps what it has calculated.
@@ -127,24 +137,22 @@ class Circuit(ABC):
     def __init__(self, machine: Parts, media: Media) -> None:
         self.machine = machine
         self.media = media
-        self._dews: dict[float, SaturationState] = {}
-        self._low: dict[tuple[float, float], State] = {}
-        self._suctions: dict[tuple[float, float], State] = {}
-        self._drives: dict[tuple[float, float, float], float] = {}
+        self.evaporator = machine.evaporator.at(media.source.volume_flow)
+        self.condenser = machine.condenser.at(media.sink.volume_flow)
+        self._low: dict[tuple[float, float], tuple[SaturationState, State, State]] = {}
+        self._means: dict[tuple[float, float], float] = {}
         self._end: State | None = None
         self._cycles: dict[tuple[float, float, float], Cycle] = {}
 
-    def dew(self, evaporating: float) -> SaturationState:
-        """Dew point of the evaporator."""
-        if evaporating not in self._dews:
-            self._dews[evaporating] = self.machine.refrigerant.dew(evaporating)
-        return self._dews[evaporating]
-
-    def outlet(self, evaporating: float, superheat: float) -> State:
-        """State at the evaporator outlet, with `superheat` (K)."""
-        if (evaporating, superheat) not in self._low:
-            self._low[evaporating, superheat] = self.machine.refrigerant.superheated(self.dew(evaporating), superheat)
-        return self._low[evaporating, superheat]
+    def low_side(self, evaporating: float, superheat: float) -> tuple[SaturationState, State, State]:
+        """Dew point of the evaporator, state at its outlet with `superheat` (K), and at the suction port of a machine
+        without an exchanger between gas and liquid."""
+        found = self._low.get((evaporating, superheat))
+        if found is None:
+            dew = self.machine.refrigerant.dew(evaporating)
+            outlet = self.machine.refrigerant.superheated(dew, superheat)
+            found = self._low[evaporating, superheat] = dew, outlet, self._suction(evaporating, outlet)
+        return found
 
     def _exchanged(self, outlet: State, liquid: State) -> float:
         """Heat in J/kg that the suction gas takes from the liquid: its share of what would warm it to the liquid, since
@@ -153,20 +161,16 @@ class Circuit(ABC):
             return 0.0
         return self.machine.exchanger * (self.machine.refrigerant.vapour(liquid.T, outlet.p).h - outlet.h)
 
-    def _suction(self, evaporating: float, outlet: State, exchanged: float) -> State:
-        """State at the suction port: after the exchanger, the line and the regulator."""
-        if (evaporating, outlet.h + exchanged) in self._suctions:
-            return self._suctions[evaporating, outlet.h + exchanged]
+    def _suction(self, evaporating: float, gas: State) -> State:
+        """State at the suction port, from that of the gas before the line and the regulator."""
         m, fluid, line = self.machine, self.machine.refrigerant, self.machine.suction_line
-        suction = fluid.vapour_from_enthalpy(outlet.p, outlet.h + exchanged, outlet) if exchanged else outlet
         if line.pressure_loss or line.heating_share or line.warming:
-            warmer = line.heating_share * (self.media.surroundings - suction.T) + line.warming
+            warmer = line.heating_share * (self.media.surroundings - gas.T) + line.warming
             dew = fluid.dew(evaporating - line.pressure_loss)
-            suction = fluid.superheated(dew, suction.T + warmer - dew.T)
-        if m.suction_regulator is not None and suction.p > m.suction_regulator:
-            suction = fluid.vapour_from_enthalpy(m.suction_regulator, suction.h)
-        self._suctions[evaporating, outlet.h + exchanged] = suction
-        return suction
+            gas = fluid.superheated(dew, gas.T + warmer - dew.T)
+        if m.suction_regulator is not None and gas.p > m.suction_regulator:
+            gas = fluid.vapour_from_enthalpy(m.suction_regulator, gas.h)
+        return gas
 
     @abstractmethod
     def high_side(self, evaporating: float, second: float) -> tuple[float, State]:
@@ -182,15 +186,23 @@ class Circuit(ABC):
         `superheat` (K) is that at the evaporator outlet, that of the setting where none is given.
         """
         held = self.machine.superheat if superheat is None else superheat
-        if (evaporating, second, held) not in self._cycles:
-            outlet, (discharge, liquid) = self.outlet(evaporating, held), self.high_side(evaporating, second)
-            exchanged = self._exchanged(outlet, liquid)
-            suction = self._suction(evaporating, outlet, exchanged)
-            compressor, share = self.machine.compressor, self.media.speed_share
-            compression = compressor.compress(self.machine.refrigerant, suction, discharge, share, self._end)
-            self._end = compression.isentropic_end
-            self._cycles[evaporating, second, held] = Cycle(compression, outlet, suction, liquid, exchanged)
-        return self._cycles[evaporating, second, held]
+        found = self._cycles.get((evaporating, second, held))
+        if found is None:
+            found = self._cycles[evaporating, second, held] = self._cycle(evaporating, second, held)
+        return found
+
+    def _cycle(self, evaporating: float, second: float, superheat: float) -> Cycle:
+        machine, (discharge, liquid) = self.machine, self.high_side(evaporating, second)
+        dew, outlet, suction = self.low_side(evaporating, superheat)
+        exchanged = self._exchanged(outlet, liquid)
+        if exchanged:
+            warm = machine.refrigerant.vapour_from_enthalpy(outlet.p, outlet.h + exchanged, outlet)
+            suction = self._suction(evaporating, warm)
+        compression = machine.compressor.compress(
+            machine.refrigerant, suction, discharge, self.media.speed_share, self._end
+        )
+        self._end = compression.isentropic_end
+        return Cycle(evaporating, second, superheat, compression, dew, outlet, suction, liquid, exchanged)
 
     def cycle(
         self, evaporating: float, second: float, superheat: float | None = None
@@ -199,7 +211,7 @@ class Circuit(ABC):
         found = self.around(evaporating, second, superheat)
         return found.compression, found.heat_from_source, found.heat_to_sink
 
-    def source_drive(self, evaporating: float, second: float, superheat: float, entering: float) -> float:
+    def source_drive(self, found: Cycle, entering: float) -> float:
         """Temperature that drives the evaporator with a medium that enters at `entering` (K).
 
         For blends it lies below the medium by the geometric mean of the differences at both ends, so that a dew point
@@ -207,17 +219,12 @@ class Circuit(ABC):
         """
         fluid = self.machine.refrigerant
         if not fluid.is_blend:
-            return evaporating
-        if (evaporating, second, superheat) not in self._drives:
-            found = self.around(evaporating, second, superheat)
-            enters = found.liquid.h - found.exchanged
-            self._drives[evaporating, second, superheat] = fluid.mean_evaporating_temperature(found.outlet.p, enters)
-        mean, end = entering - self._drives[evaporating, second, superheat], entering - evaporating
+            return found.evaporating
+        at = found.outlet.p, found.liquid.h - found.exchanged
+        if at not in self._means:
+            self._means[at] = fluid.mean_evaporating_temperature(*at)
+        mean, end = entering - self._means[at], entering - found.evaporating
         return entering - between(end, 2.0 * mean - end)
-
-    def gas_heat(self, evaporating: float, superheat: float, flow: float) -> float:
-        """Heat in W that superheats the gas inside the evaporator."""
-        return flow * (self.outlet(evaporating, superheat).h - self.dew(evaporating).h)
 
     def low_guess(self) -> tuple[float, ...]:
         """The unknowns of the low side to start from: one for a difference between medium and refrigerant, and the
@@ -234,31 +241,27 @@ class Circuit(ABC):
         m, difference = self.machine, positive(low[0])
         return self.entering(low) - difference, within_reach(m.superheat, difference, m.superheat_share)
 
-    def dry_share(self, evaporating: float, second: float, superheat: float, entering: float) -> float:
+    def dry_share(self, found: Cycle, entering: float) -> float:
         """Share of the evaporator's surface that only superheats gas, where the medium enters at `entering` (K).
 
         The mean difference is the geometric one of both ends of the dry zone, the medium entering where the gas leaves.
         Up to a superheat of 0.8 of the inlet difference it is within 13 % of the logarithmic mean, beyond it asks for
         more surface, as circuits that share their load unevenly do; so gas never leaves as warm as the medium comes.
         """
-        flow = self.around(evaporating, second, superheat).compression.flow
-        return self._dry_share(self.gas_heat(evaporating, superheat, flow), superheat, entering - evaporating)
+        difference = entering - found.evaporating
+        mean = math.sqrt(max(difference * (difference - found.superheat), 1e-12))
+        return self.evaporator.dry_share(self.media.source, found.gas_heat, mean)
 
-    def _dry_share(self, gas: float, superheat: float, difference: float) -> float:
-        mean = math.sqrt(max(difference * (difference - superheat), 1e-12))
-        return self.machine.evaporator.dry_share(self.media.source, gas, mean)
-
-    def low_gaps(self, low: Sequence[float], evaporating: float, second: float, superheat: float) -> tuple[float, ...]:
+    def low_gaps(self, low: Sequence[float], found: Cycle) -> tuple[float, ...]:
         """Heat that the wetted surface gives less heat that evaporation takes, in tens of kelvin of the exchanger, and
         what the inlet of a medium known by its outlet misses, in tens of kelvin.
 
         A valve superheats by leaving surface dry, so that the evaporator has two zones with a moving boundary.
         """
-        source, exchanger, entering = self.media.source, self.machine.evaporator, self.entering(low)
-        found = self.around(evaporating, second, superheat)
-        taken, gas = found.heat_from_source, self.gas_heat(evaporating, superheat, found.compression.flow)
-        wetted = 1.0 - self._dry_share(gas, superheat, entering - evaporating)
-        given = exchanger.heat_from(source, self.source_drive(evaporating, second, superheat, entering), wetted, gas)
+        source, exchanger, entering = self.media.source, self.evaporator, self.entering(low)
+        taken, gas = found.heat_from_source, found.gas_heat
+        wetted = 1.0 - self.dry_share(found, entering)
+        given = exchanger.heat_from(source, self.source_drive(found, entering), wetted, gas)
         gap = (given - (taken - gas)) / (exchanger.heat_per_kelvin(source) * 10.0)
         return (gap, (source.inlet(-taken) - low[1]) / 10.0) if source.by_outlet else (gap,)
 

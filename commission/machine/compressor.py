@@ -45,9 +45,10 @@ class EfficiencyShape:
         Raises:
             NotCalculatedError: no compressor of this shape delivers gas at that ratio.
         """
-        if not (self.volumetric(ratio) > 0 and work > 0 and self.leakage * (ratio - 1) < 1):
+        volumetric = self.volumetric(ratio)
+        if not (volumetric > 0 and work > 0 and self.leakage * (ratio - 1) < 1):
             raise NotCalculatedError(f"at a pressure ratio of {ratio:.1f} all the gas leaks back inside the compressor")
-        losses = (self.loss_suction + self.loss_discharge * ratio) / (self.volumetric(ratio) * work)
+        losses = (self.loss_suction + self.loss_discharge * ratio) / (volumetric * work)
         recompressed = 1 / (1 - self.leakage * (ratio - 1))
         return 1 / (self._inside(ratio, exponent) * recompressed + losses)
 

@@ -8,7 +8,7 @@ arrangement does not matter.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 from commission.errors import NotCalculatedError
@@ -85,6 +85,14 @@ class Exchanger:
     air_share: float | None = None
     gas_share: float = GAS_SHARE
 
+    def at(self, volume_flow: float) -> Exchanger:
+        """The same exchanger rated at another flow of the medium in m3/s."""
+        if volume_flow == self.rated_flow:
+            return self
+        return Exchanger(
+            self.conductance_at(volume_flow), volume_flow, self.flow_exponent, self.air_share, self.gas_share
+        )
+
     def conductance_at(self, volume_flow: float) -> float:
         """Conductance in W/K at another flow of the medium in m3/s."""
         if self.flow_exponent == 0.0 or volume_flow == self.rated_flow:
@@ -100,12 +108,13 @@ class Exchanger:
         if wetted < LEAST_WETTED:
             lacking = (LEAST_WETTED - wetted) * self.conductance_at(stream.volume_flow) * DEPTH
             return self.heat_from(stream, refrigerant, LEAST_WETTED, before) - lacking
-        conductance = wetted * self.conductance_at(stream.volume_flow)
+        if stream.by_outlet:
+            return self.heat_per_kelvin(stream, surface_share=wetted) * (stream.temperature - refrigerant)
+        rate, conductance = stream.capacity_rate, wetted * self.conductance_at(stream.volume_flow)
+        share = effectiveness(conductance / rate)
         if self.air_share is not None and stream.air is not None:
-            heat = coil_heat(stream, refrigerant, conductance, self.air_share)
-        else:
-            heat = self.heat_per_kelvin(stream, surface_share=wetted) * (stream.temperature - refrigerant)
-        return heat if stream.by_outlet else heat - before * effectiveness(conductance / stream.capacity_rate)
+            return coil_heat(stream, refrigerant, conductance, self.air_share) - before * share
+        return share * (rate * (stream.temperature - refrigerant) - before)
 
     def dry_share(self, stream: Stream, heat: float, difference: float) -> float:
         """Share of the surface that takes `heat` (W) to superheat gas, at a mean `difference` (K) to the medium; above

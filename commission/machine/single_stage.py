@@ -214,13 +214,12 @@ class CondenserCircuit(Circuit):
         """Pressure at the discharge port and state of the liquid before the valve."""
         if condensing not in self._high:
             m, fluid = self.machine, self.machine.refrigerant
-            pressure = fluid.dew_pressure(condensing)
             if m.flash:
                 bubble, dew = fluid.bubble(self.bubble_temperature(condensing)), fluid.dew(condensing)
-                liquid = fluid.throttled(pressure, bubble.h + m.flash * (dew.h - bubble.h))
+                liquid = fluid.throttled(dew.p, bubble.h + m.flash * (dew.h - bubble.h))
             else:
                 liquid = self.liquid(condensing, self.subcooled(condensing))
-            discharge = fluid.dew_pressure(condensing + m.discharge_line_loss) if m.discharge_line_loss else pressure
+            discharge = fluid.dew_pressure(condensing + m.discharge_line_loss)
             self._high[condensing] = (discharge + m.gas_pressure, liquid)
         return self._high[condensing]
 
@@ -236,7 +235,7 @@ class CondenserCircuit(Circuit):
             return 0.0 if m.flash else m.subcooling
         entering = sink.temperature
         if sink.by_outlet:  # the inlet that goes with the heat of the exchanger, which is that of the balance
-            rise = m.condenser.heat_per_kelvin(sink) / sink.capacity_rate
+            rise = self.condenser.heat_per_kelvin(sink) / sink.capacity_rate
             entering = max(entering - rise * (self.sink_drive(condensing) - entering), COLDEST)
         difference = max(self.bubble_temperature(condensing) - entering, 0.0)
         return within_reach(m.subcooling, difference, m.subcooling_share)
@@ -270,9 +269,8 @@ class CondenserCircuit(Circuit):
 
     def sink_gap(self, condensing: float, given: float, share: float) -> float:
         """Heat that the sink takes less heat that the refrigerant gives, in tens of kelvin of the exchanger."""
-        m, sink = self.machine, self.media.sink.settled(given)
-        by = m.head_pressure.by if m.head_pressure else None
-        per_kelvin = heat_per_kelvin(by, share, m.condenser, sink)
+        control, sink = self.machine.head_pressure, self.media.sink.settled(given)
+        per_kelvin = heat_per_kelvin(control.by if control else None, share, self.condenser, sink)
         taken = per_kelvin * (self.sink_drive(condensing) - sink.temperature)
         return (taken - given) / (per_kelvin * 10.0)
 
@@ -281,8 +279,8 @@ class CondenserCircuit(Circuit):
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             (evaporating, superheat), condensing = self.controlled(x), x[-1]
-            given = self.cycle(evaporating, condensing, superheat)[2]
-            return *self.low_gaps(x, evaporating, condensing, superheat), self.sink_gap(condensing, given, share)
+            found = self.around(evaporating, condensing, superheat)
+            return *self.low_gaps(x, found), self.sink_gap(condensing, found.heat_to_sink, share)
 
         low = self.low_guess()
         solution = _solved(gaps, (*low, self.guess()), start, jacobian=USUAL if len(low) == 1 else None)
@@ -295,18 +293,18 @@ class CondenserCircuit(Circuit):
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             evaporating, superheat = self.controlled(x)
-            return self.low_gaps(x, evaporating, condensing, superheat)
+            return self.low_gaps(x, self.around(evaporating, condensing, superheat))
 
         solution = _solved(gaps, self.low_guess(), start)
         evaporating, superheat = self.controlled(solution.x)
-        given = self.cycle(evaporating, condensing, superheat)[2]
+        given = self.around(evaporating, condensing, superheat).heat_to_sink
         difference = self.sink_drive(condensing) - self.media.sink.temperature
         if difference <= 0:
             return None
         share = share_for(
             control.by,
             given / difference,
-            self.machine.condenser,
+            self.condenser,
             self.media.sink.settled(given),
             control.least_share,
         )
@@ -319,7 +317,7 @@ class CondenserCircuit(Circuit):
     def flow_per_area(self, evaporating: float, condensing: float) -> float:
         """Flow in kg/s through each m2 of effective area of a fixed restriction."""
         liquid = self.high_side(evaporating, condensing)[1]
-        return math.sqrt(2 * liquid.rho * max(liquid.p - self.dew(evaporating).p, 1.0))
+        return math.sqrt(2 * liquid.rho * max(liquid.p - self.machine.refrigerant.dew_pressure(evaporating), 1.0))
 
     def restricted(self, start: Balance | None) -> Balance:
         """A fixed restriction: its flow is that of the compressor, and the superheat follows.
@@ -333,12 +331,12 @@ class CondenserCircuit(Circuit):
         def gaps(x: Sequence[float]) -> Sequence[float]:
             condensing, superheat = x[-2:]
             evaporating = self.dry_out(x, superheat)
-            compression, _, given = self.cycle(evaporating, condensing, superheat)
+            found = self.around(evaporating, condensing, superheat)
             through = area * self.flow_per_area(evaporating, condensing)
             return (
-                *self.low_gaps(x, evaporating, condensing, superheat),
-                self.sink_gap(condensing, given, 1.0),
-                math.log(compression.flow / through),
+                *self.low_gaps(x, found),
+                self.sink_gap(condensing, found.heat_to_sink, 1.0),
+                math.log(found.compression.flow / through),
             )
 
         try:
@@ -363,29 +361,30 @@ class CondenserCircuit(Circuit):
 
     def starved(self, evaporating: float) -> Balance:
         """Evaporating temperature held down by the valve; the superheat follows from the surface that stays dry."""
-        machine, control = self.machine, self.machine.head_pressure
+        control = self.machine.head_pressure
 
         def superheat(low: Sequence[float]) -> float:
             difference = self.entering(low) - evaporating
             return difference - positive(low[0]) ** 2 / difference
 
         def both(x: Sequence[float]) -> Sequence[float]:
-            condensing, here = x[-1], superheat(x)
-            given = self.cycle(evaporating, condensing, here)[2]
-            return *self.low_gaps(x, evaporating, condensing, here), self.sink_gap(condensing, given, 1.0)
+            found = self.around(evaporating, x[-1], superheat(x))
+            return *self.low_gaps(x, found), self.sink_gap(found.second, found.heat_to_sink, 1.0)
 
         solution = solve(both, (*self.low_guess(), self.guess()), largest_step=4.0)
         condensing = solution.x[-1]
         if control is None or condensing >= control.hold:
             return self.result(evaporating, condensing, superheat(solution.x), 1.0, LIMITED, solution)
         solution = solve(
-            lambda x: self.low_gaps(x, evaporating, control.hold, superheat(x)), solution.x[:-1], largest_step=4.0
+            lambda x: self.low_gaps(x, self.around(evaporating, control.hold, superheat(x))),
+            solution.x[:-1],
+            largest_step=4.0,
         )
         found = superheat(solution.x)
-        given = self.cycle(evaporating, control.hold, found)[2]
+        given = self.around(evaporating, control.hold, found).heat_to_sink
         per_kelvin = given / (self.sink_drive(control.hold) - self.media.sink.temperature)
         sink = self.media.sink.settled(given)
-        share = share_for(control.by, per_kelvin, machine.condenser, sink, control.least_share)
+        share = share_for(control.by, per_kelvin, self.condenser, sink, control.least_share)
         if share is None or share == control.least_share:
             raise NotCalculatedError("no balance with suction pressure limited and head pressure held together")
         return self.result(evaporating, control.hold, found, share, f"{LIMITED}, {HELD}", solution)
@@ -394,7 +393,7 @@ class CondenserCircuit(Circuit):
         """Only the condenser balances; the evaporating temperature is given."""
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
-            return (self.sink_gap(x[0], self.cycle(evaporating, x[0])[2], 1.0),)
+            return (self.sink_gap(x[0], self.around(evaporating, x[0]).heat_to_sink, 1.0),)
 
         solution = _solved(gaps, (self.guess(),), start)
         return self.result(evaporating, solution.x[0], self.machine.superheat, 1.0, FREE, solution)
@@ -410,26 +409,28 @@ class CondenserCircuit(Circuit):
         """The balance at a solution."""
         control = self.machine.head_pressure
         flow = flow_share(control, share)
-        compression, source, sink = self.cycle(evaporating, condensing, superheat)
-        settled, inlet = self.media.sink.settled(sink), self.media.source.inlet(-source)
-        through = replace(settled, capacity_rate=flow * settled.capacity_rate)
-        suction, limit = self.around(evaporating, condensing, superheat).suction.p, self.machine.suction_regulator
-        if limit is not None and suction >= limit * (1 - 1e-9):
+        found = self.around(evaporating, condensing, superheat)
+        source, sink = found.heat_from_source, found.heat_to_sink
+        through, inlet = self.media.sink.settled(sink), self.media.source.inlet(-source)
+        if flow != 1.0:
+            through = replace(through, capacity_rate=flow * through.capacity_rate)
+        limit = self.machine.suction_regulator
+        if limit is not None and found.suction.p >= limit * (1 - 1e-9):
             regime = f"{REGULATED}, {regime}"
         return Balance(
             regime=regime,
             evaporating_temperature=evaporating,
             condensing_temperature=condensing,
-            compression=compression,
+            compression=found.compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, condensing, superheat, inlet),
+            source_drive=self.source_drive(found, inlet),
             sink_drive=self.sink_drive(condensing),
             source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
             superheat=superheat,
-            dry_share=self.dry_share(evaporating, condensing, superheat, inlet),
+            dry_share=self.dry_share(found, inlet),
             share=share,
             sink_fan_share=fan_share(control, share),
             sink_flow_share=flow,

@@ -115,7 +115,8 @@ class GasCoolerCircuit(Circuit):
 
         def gaps(x: Sequence[float]) -> Sequence[float]:
             evaporating, superheat = self.controlled(x)
-            return *self.low_gaps(x, evaporating, x[-1], superheat), self.gap(evaporating, x[-1], superheat)
+            found = self.around(evaporating, x[-1], superheat)
+            return *self.low_gaps(x, found), self.gap(evaporating, x[-1], superheat)
 
         if start is not None:
             try:
@@ -148,7 +149,8 @@ class GasCoolerCircuit(Circuit):
     def _outcome(self, solution: Solution, given: float | None = None) -> Balance:
         evaporating, superheat = self.controlled(solution.x) if given is None else (given, self.machine.superheat)
         outlet = solution.x[-1]
-        compression, source, sink = self.cycle(evaporating, outlet, superheat)
+        found = self.around(evaporating, outlet, superheat)
+        source, sink = found.heat_from_source, found.heat_to_sink
         p, inlet = self.pressure(evaporating, outlet), self.media.source.inlet(-source)
         through = self.media.sink.settled(sink)
         critical = self.machine.refrigerant.p_critical
@@ -157,16 +159,16 @@ class GasCoolerCircuit(Circuit):
             regime=TRANSCRITICAL if p > critical else SUBCRITICAL,
             evaporating_temperature=evaporating,
             condensing_temperature=condensing,
-            compression=compression,
+            compression=found.compression,
             heat_from_source=source,
             heat_to_sink=sink,
-            source_drive=self.source_drive(evaporating, outlet, superheat, inlet),
+            source_drive=self.source_drive(found, inlet),
             sink_drive=outlet,
             source_inlet_temperature=inlet,
             sink_inlet_temperature=through.inlet(sink),
             sink_outlet_temperature=through.outlet(sink),
             superheat=superheat,
-            dry_share=self.dry_share(evaporating, outlet, superheat, inlet) if given is None else 0.0,
+            dry_share=self.dry_share(found, inlet) if given is None else 0.0,
             share=1.0,
             sink_fan_share=1.0,
             sink_flow_share=1.0,
