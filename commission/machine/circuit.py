@@ -141,7 +141,7 @@ class Circuit(ABC):
         self.condenser = machine.condenser.at(media.sink.volume_flow)
         self._low: dict[tuple[float, float], tuple[SaturationState, State, State]] = {}
         self._means: dict[tuple[float, float], float] = {}
-        self._end: State | None = None
+        self._last: Cycle | None = None
         self._cycles: dict[tuple[float, float, float], Cycle] = {}
 
     def low_side(self, evaporating: float, superheat: float) -> tuple[SaturationState, State, State]:
@@ -150,7 +150,8 @@ class Circuit(ABC):
         found = self._low.get((evaporating, superheat))
         if found is None:
             dew = self.machine.refrigerant.dew(evaporating)
-            outlet = self.machine.refrigerant.superheated(dew, superheat)
+            near = self._last.outlet if self._last is not None else None
+            outlet = self.machine.refrigerant.superheated(dew, superheat, near)
             found = self._low[evaporating, superheat] = dew, outlet, self._suction(evaporating, outlet)
         return found
 
@@ -167,7 +168,8 @@ class Circuit(ABC):
         if line.pressure_loss or line.heating_share or line.warming:
             warmer = line.heating_share * (self.media.surroundings - gas.T) + line.warming
             dew = fluid.dew(evaporating - line.pressure_loss)
-            gas = fluid.superheated(dew, gas.T + warmer - dew.T)
+            near = self._last.suction if self._last is not None else gas
+            gas = fluid.superheated(dew, gas.T + warmer - dew.T, near)
         if m.suction_regulator is not None and gas.p > m.suction_regulator:
             gas = fluid.vapour_from_enthalpy(m.suction_regulator, gas.h)
         return gas
@@ -198,11 +200,10 @@ class Circuit(ABC):
         if exchanged:
             warm = machine.refrigerant.vapour_from_enthalpy(outlet.p, outlet.h + exchanged, outlet)
             suction = self._suction(evaporating, warm)
-        compression = machine.compressor.compress(
-            machine.refrigerant, suction, discharge, self.media.speed_share, self._end
-        )
-        self._end = compression.isentropic_end
-        return Cycle(evaporating, second, superheat, compression, dew, outlet, suction, liquid, exchanged)
+        near = self._last.compression.isentropic_end if self._last is not None else None
+        compression = machine.compressor.compress(machine.refrigerant, suction, discharge, self.media.speed_share, near)
+        self._last = Cycle(evaporating, second, superheat, compression, dew, outlet, suction, liquid, exchanged)
+        return self._last
 
     def cycle(
         self, evaporating: float, second: float, superheat: float | None = None

@@ -8,7 +8,7 @@ arrangement does not matter.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import Literal
 
 from commission.errors import NotCalculatedError

@@ -226,7 +226,8 @@ class CondenserCircuit(Circuit):
     def liquid(self, condensing: float, subcooling: float) -> State:
         """Liquid below its bubble point by `subcooling` (K)."""
         fluid = self.machine.refrigerant
-        return fluid.subcooled(fluid.bubble(self.bubble_temperature(condensing)), subcooling)
+        near = self._last.liquid if self._last is not None else None
+        return fluid.subcooled(fluid.bubble(self.bubble_temperature(condensing)), subcooling, near)
 
     def subcooled(self, condensing: float) -> float:
         """Subcooling in K of the liquid that a condenser at this dew point (K) gives."""

@@ -10,7 +10,7 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
-from commission.properties.equation import Equation, Point
+from commission.properties.equation import Equation
 from commission.properties.errors import PropertyRangeError, bar, celsius
 from commission.properties.states import SaturationState, State
 
@@ -45,7 +45,7 @@ class Beyond:
         if not p <= line.p_max:
             raise PropertyRangeError(line.name, f"{bar(p)} is above {bar(line.p_max)}, where the equation ends")
 
-    def at(self, T: float, p: float) -> Point:
+    def at(self, T: float, p: float) -> State:
         """The state at `T` (K) and `p` (Pa): dense, or gas where it is hotter than the end of two phases."""
         self.need(p)
         line = self._line
@@ -81,13 +81,13 @@ class Beyond:
         """
         self.need(p)
         T = 1.02 * self._line.T_critical
-        point = self._equation.solve(p, "h", h, self._middle, T, alike=True)
+        point = self._equation.solve(p, "h", h, self._equation.at(self._middle, T), alike=True)
         if point.p_rho > 0:
-            return State(point.T, p, point.h, point.s, point.rho)
+            return point
         note = f"at {celsius(point.T)} and {bar(p)}, next to the critical point, two alike phases are taken as one"
-        return State(point.T, p, point.h, point.s, point.rho, warnings=(note,))
+        return point._replace(warnings=(note,))
 
-    def isentropic_end(self, state: State | SaturationState, p: float) -> Point:
+    def isentropic_end(self, state: State | SaturationState, p: float) -> State:
         """The state at `p` (Pa) with the entropy of `state`, in steps of pressure, each started by the last slope."""
         self.need(p)
         point = self._equation.at(state.rho, state.T)
@@ -99,5 +99,5 @@ class Beyond:
             step = point.p * math.log(goal / point.p) / determinant
             rho = point.rho * math.exp(point.s_t * step / point.rho)
             T = point.T * math.exp(-point.s_rho * step / point.T)
-            point = self._equation.solve(goal, "s", state.s, rho, T)
+            point = self._equation.solve(goal, "s", state.s, self._equation.at(rho, T))
         return point

@@ -9,55 +9,16 @@ from __future__ import annotations
 
 import math
 import threading
-from dataclasses import dataclass
 from typing import Any
 
 from commission.properties.coolprop import load
 from commission.properties.errors import PropertyRangeError, bar, celsius
 from commission.properties.lines import FluidData
 from commission.properties.saturation import GAS_CONSTANT
+from commission.properties.states import State
 
 SMALL_STEP = 1e-5  # a Newton step this small is closed by the first-order correction: what is left is 1e-10
 MAX_STEPS = 50
-
-
-@dataclass(slots=True)
-class Point:
-    """Values and first derivatives at rho (kg/m3) and T (K), `_t` by temperature; Pa, J/kg, J/(kg K)."""
-
-    rho: float
-    T: float
-    p: float
-    h: float
-    s: float
-    p_rho: float
-    p_t: float
-    cv: float
-
-    @property
-    def h_rho(self) -> float:
-        """dh/drho at constant temperature."""
-        return (self.p_rho - self.T * self.p_t / self.rho) / self.rho
-
-    @property
-    def h_t(self) -> float:
-        """dh/dT at constant density."""
-        return self.cv + self.p_t / self.rho
-
-    @property
-    def s_rho(self) -> float:
-        """ds/drho at constant temperature (a Maxwell relation)."""
-        return -self.p_t / self.rho**2
-
-    @property
-    def s_t(self) -> float:
-        """ds/dT at constant density."""
-        return self.cv / self.T
-
-    @property
-    def cp(self) -> float:
-        """Specific heat at constant pressure."""
-        return self.cv + self.T * self.p_t**2 / (self.rho**2 * self.p_rho)
 
 
 class _Tools:
@@ -98,7 +59,7 @@ class Equation:
         """How often this thread has evaluated the equation of state."""
         return self._local.tools.calls
 
-    def at(self, rho: float, T: float) -> Point:
+    def at(self, rho: float, T: float) -> State:
         """Everything at density `rho` (kg/m3) and temperature `T` (K); no range is checked here.
 
         Raises:
@@ -112,12 +73,12 @@ class Equation:
             raise self._no_number(rho, T) from None
         return self._read(tools, rho, T, tools.p(), tools.slope(*tools.by_rho))
 
-    def _read(self, tools: _Tools, rho: float, T: float, p: float, p_rho: float) -> Point:
+    def _read(self, tools: _Tools, rho: float, T: float, p: float, p_rho: float) -> State:
         """What the equation gives where it has just been evaluated, with the pressure and slope read there."""
         h, s = tools.h() + self.data.h_offset, tools.s() + self.data.s_offset
-        return Point(rho, T, p, h, s, p_rho, tools.slope(*tools.by_T), tools.cv())
+        return State(T, p, h, s, rho, None, (), p_rho, tools.slope(*tools.by_T), tools.cv())
 
-    def density(self, T: float, p: float, start: float) -> Point:
+    def density(self, T: float, p: float, start: float) -> State:
         """The single-phase point at (T, p) reached from density `start`, which must lie on the right side.
 
         Raises:
@@ -140,8 +101,10 @@ class Equation:
             rho += max(-0.5 * rho, min(0.5 * rho, step))
         raise self._lost(T, p)
 
-    def solve(self, p: float, name: str, value: float, rho: float, T: float, *, alike: bool = False) -> Point:
-        """The single-phase point with pressure `p` and `name` ('h' or 's') equal to `value`, from (rho, T).
+    def solve(self, p: float, name: str, value: float, start: State, *, alike: bool = False) -> State:
+        """The single-phase state with pressure `p` and `name` ('h' or 's') equal to `value`, from one near it.
+
+        The derivatives at `start` give the first step.
 
         `alike` allows states that are not stable by themselves, as next to the critical point the mean of two alike
         phases is; it is for pressures beyond the end of the dew line only.
@@ -149,27 +112,27 @@ class Equation:
         Raises:
             PropertyRangeError: no convergence to a mechanically stable state.
         """
-        entropy = name == "s"
+        entropy, point = name == "s", start
         for _ in range(MAX_STEPS):
-            point = self.at(rho, T)
-            p_rho, p_t = point.p_rho, point.p_t
-            if not (p_rho > 0 or alike) or not point.cv > 0:
+            T, here, h, s, rho, _, _, p_rho, p_t, cv = point
+            if not (p_rho > 0 or alike) or not cv > 0:
                 break
+            lack, by_volume = p - here, p_t / rho
             if entropy:
-                miss, by_rho, by_T = value - point.s, point.s_rho, point.s_t
+                miss, by_rho, by_T = value - s, -by_volume / rho, cv / T
             else:
-                miss, by_rho, by_T = value - point.h, point.h_rho, point.h_t
-            lack, determinant = p - point.p, p_rho * by_T - p_t * by_rho
+                miss, by_rho, by_T = value - h, (p_rho - T * by_volume) / rho, cv + by_volume
+            determinant = p_rho * by_T - p_t * by_rho
             d_rho = (lack * by_T - p_t * miss) / determinant
             d_T = (p_rho * miss - lack * by_rho) / determinant
-            if abs(d_rho) < SMALL_STEP * rho and abs(d_T) < SMALL_STEP * T:
+            size = max(abs(d_rho) / (0.4 * rho), abs(d_T) / (0.15 * T))
+            if size < SMALL_STEP and point is not start:
                 return _corrected(point, d_rho, d_T)
-            share = min(1.0, 0.4 * rho / max(abs(d_rho), 1e-300), 0.15 * T / max(abs(d_T), 1e-300))
-            rho += share * d_rho
-            T += share * d_T
-        raise self._lost(T, p)
+            share = 1.0 if size <= 1.0 else 1.0 / size
+            point = self.at(rho + share * d_rho, T + share * d_T)
+        raise self._lost(point.T, p)
 
-    def dense(self, T: float, p: float, largest: float) -> Point:
+    def dense(self, T: float, p: float, largest: float) -> State:
         """The point at (T, p) above the critical pressure, where pressure rises with density: Newton held in a bracket.
 
         `largest` is a density (kg/m3) that certainly has a pressure above `p` at `T`, or the densest state known.
@@ -205,13 +168,19 @@ class Equation:
         )
 
 
-def _corrected(point: Point, d_rho: float, d_T: float) -> Point:
-    """The point after a last small step, values to first order."""
-    rho, T, p_rho, p_t, cv = point.rho, point.T, point.p_rho, point.p_t, point.cv
+def _corrected(point: State, d_rho: float, d_T: float) -> State:
+    """The state after a last small step, values to first order."""
+    T, p, h, s, rho, _, _, p_rho, p_t, cv = point
     by_volume = p_t / rho
-    point.p += p_rho * d_rho + p_t * d_T
-    point.h += (p_rho - T * by_volume) / rho * d_rho + (cv + by_volume) * d_T
-    point.s += cv / T * d_T - by_volume / rho * d_rho
-    point.rho = rho + d_rho
-    point.T = T + d_T
-    return point
+    return State(
+        T + d_T,
+        p + p_rho * d_rho + p_t * d_T,
+        h + (p_rho - T * by_volume) / rho * d_rho + (cv + by_volume) * d_T,
+        s + cv / T * d_T - by_volume / rho * d_rho,
+        rho + d_rho,
+        None,
+        (),
+        p_rho,
+        p_t,
+        cv,
+    )

@@ -8,7 +8,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from commission.properties.equation import Equation, Point
+from commission.properties.equation import Equation
 from commission.properties.errors import PropertyRangeError
 
 if TYPE_CHECKING:
@@ -48,13 +48,13 @@ def isobar_temperatures(
     return found
 
 
-def _next(refrigerant: Refrigerant, equation: Equation, point: Point, p: float, h: float, beyond: bool) -> Point:
+def _next(refrigerant: Refrigerant, equation: Equation, point: State, p: float, h: float, beyond: bool) -> State:
     """The state at `p` with enthalpy `h`, from a neighbour; by itself where Newton loses its way near the critical."""
     step = (h - point.h) / point.cp
     rho = point.rho - step * point.p_t / point.p_rho
     if point.p_rho > 0 and rho > 0.3 * point.rho:
         try:
-            return equation.solve(p, "h", h, rho, point.T + step, alike=beyond)
+            return equation.solve(p, "h", h, equation.at(rho, point.T + step), alike=beyond)
         except PropertyRangeError:
             pass
     alone = refrigerant.throttled(p, h)

@@ -18,13 +18,14 @@ from commission.properties.states import SaturationState, Slopes, State
 
 if TYPE_CHECKING:
     from commission.properties.beyond import Beyond
-    from commission.properties.equation import Equation, Point
+    from commission.properties.equation import Equation
     from commission.properties.lines import FluidData, Line
     from commission.properties.register import RegisterEntry
     from commission.properties.two_phase import WetIsobar
 
 
 LIKE = 0.02  # of its pressure: a state as near as that is a good start for another
+FAR = 0.05  # of its density: what is farther off is not told by first derivatives
 
 
 class Refrigerant(Saturation):
@@ -104,16 +105,18 @@ class Refrigerant(Saturation):
         if p > self.p_dew_high:
             self._beyond.need(p)
             self._beyond.need_vapour(T, p)
-            return _state(self._beyond.at(T, p))
+            return self._beyond.at(T, p)
         if not p > 0:
             raise PropertyRangeError(self.name, f"a pressure of {bar(p)} cannot be")
         line = self.dew(min(T, self.T_high))
         if self.T_high >= T and p > line.p * (1 + EDGE_PRESSURE):
             raise self._not_vapour(T, p)
-        return _state(self._equation.density(T, p, self._gas_density(T, p, line)))
+        return self._equation.density(T, p, self._gas_density(T, p, line))
 
-    def superheated(self, dew: SaturationState, superheat: float) -> State:
+    def superheated(self, dew: SaturationState, superheat: float, near: State | None = None) -> State:
         """Vapour at the pressure of a dew point of this refrigerant, warmer by `superheat` (K).
+
+        `near` is vapour at a neighbouring place: it saves calls and moves the result by rounding only.
 
         Raises:
             PropertyRangeError: colder than the dew point, or hotter than `T_max`.
@@ -122,10 +125,13 @@ class Refrigerant(Saturation):
         if not superheat >= -EDGE * dew.T:
             raise self._not_vapour(T, dew.p)
         self._need_gas_temperature(T)
-        return _state(self._equation.density(T, dew.p, self._gas_density(T, dew.p, dew)))
+        start = _density_near(near, T, dew.p) or self._gas_density(T, dew.p, dew)
+        return self._equation.density(T, dew.p, start)
 
-    def subcooled(self, bubble: SaturationState, subcooling: float) -> State:
+    def subcooled(self, bubble: SaturationState, subcooling: float, near: State | None = None) -> State:
         """Liquid at the pressure of a bubble point of this refrigerant, colder by `subcooling` (K).
+
+        `near` is liquid at a neighbouring place: it saves calls and moves the result by rounding only.
 
         Raises:
             PropertyRangeError: warmer than the bubble point, or colder than `T_low`.
@@ -134,7 +140,8 @@ class Refrigerant(Saturation):
         self._need_temperature(T)
         if not subcooling >= -EDGE * bubble.T:
             raise self._not_liquid(T, bubble.p)
-        return _state(self._equation.density(T, bubble.p, math.exp(self._bubble.row(T)[3])))
+        start = _density_near(near, T, bubble.p) or math.exp(self._bubble.row(T)[3])
+        return self._equation.density(T, bubble.p, start)
 
     def liquid(self, T: float, p: float) -> State:
         """Subcooled liquid at `T` (K) and `p` (Pa).
@@ -145,14 +152,14 @@ class Refrigerant(Saturation):
         if p > self.p_dew_high and not self.is_blend and self.T_high < T:
             self._need_gas_temperature(T)
             self._beyond.need_liquid(T, p)
-            return _state(self._beyond.at(T, p))
+            return self._beyond.at(T, p)
         self._need_temperature(T)
         ln_p, _, _, ln_rho = self._bubble.row(T)
         if not p >= math.exp(ln_p) * (1 - EDGE):
             raise self._not_liquid(T, p)
         if not p <= self.p_max:
             raise PropertyRangeError(self.name, f"{bar(p)} is above {bar(self.p_max)}, where the equation ends")
-        return _state(self._equation.density(T, p, math.exp(ln_rho)))
+        return self._equation.density(T, p, math.exp(ln_rho))
 
     def supercritical(self, T: float, p: float) -> State:
         """The single phase at `T` (K) and a pressure above the critical pressure (Pa); pure fluids only.
@@ -164,7 +171,7 @@ class Refrigerant(Saturation):
             raise PropertyRangeError(self.name, f"{bar(p)} is not above the critical pressure {bar(self.p_critical)}")
         self._beyond.need(p)
         self._need_gas_temperature(T)
-        return _state(self._beyond.at(T, p))
+        return self._beyond.at(T, p)
 
     def slopes(self, state: State) -> Slopes:
         """First derivatives of a single-phase `state` at constant pressure and at constant temperature."""
@@ -221,7 +228,7 @@ class Refrigerant(Saturation):
         if p > self.p_dew_high:
             if isinstance(state, State) and state.quality is not None:  # first dry it along the isentrope
                 state = self._vapour_or_wet(0.7 * self.p_dew_high, "s", state.s, wet=None)
-            return _state(self._held(self._beyond.isentropic_end(state, p)))
+            return self._held(self._beyond.isentropic_end(state, p))
         return self._vapour_or_wet(p, "s", state.s, wet="compression ends in the wet region", near=near)
 
     def vapour_from_enthalpy(self, p: float, h: float, near: State | None = None) -> State:
@@ -314,17 +321,17 @@ class Refrigerant(Saturation):
         T = min(T, 1.2 * self.T_max)
         gap = 1 - p * self.molar_mass / (GAS_CONSTANT * T_dew * rho)
         start = p * self.molar_mass / (GAS_CONSTANT * T * (1 - gap * (T_dew / T) ** 3))
-        return _state(self._held(self._equation.solve(p, name, value, start, T)))
+        return self._held(self._equation.solve(p, name, value, self._equation.at(start, T)))
 
     def _vapour_like(self, near: State, p: float, name: str, value: float) -> State | None:
         """Vapour with this value, from a neighbour; None where there is none, or none that would not condense."""
         try:
-            point = self._equation.solve(p, name, value, near.rho * p / near.p, near.T)
+            point = self._equation.solve(p, name, value, near)
         except PropertyRangeError:
             return None
         if self.T_high >= point.T and p > self.dew_pressure(point.T) * (1 + EDGE_PRESSURE):
             return None
-        return _state(self._held(point))
+        return self._held(point)
 
     def _wet_at_entropy(self, p: float, s: float, wet: str) -> State:
         isobar = self._wet(p)
@@ -338,14 +345,13 @@ class Refrigerant(Saturation):
     def _liquid_from_enthalpy(self, bubble: SaturationState, h: float) -> State:
         from commission.properties.isobar import liquid_at_enthalpy
 
-        cp = self._equation.at(bubble.rho, bubble.T).cp
         try:
-            point = self._equation.solve(bubble.p, "h", h, bubble.rho, bubble.T + (h - bubble.h) / cp)
+            point = self._equation.solve(bubble.p, "h", h, self._equation.at(bubble.rho, bubble.T))
         except PropertyRangeError:
             return liquid_at_enthalpy(self, bubble.p, h, bubble.T)
         if not self.T_low <= point.T:
             raise PropertyRangeError(self.name, f"liquid colder than {celsius(self.T_low)}, where the equation ends")
-        return _state(point)
+        return point
 
     def _from_enthalpy_beyond(self, p: float, h: float) -> State:
         state = self._beyond.from_enthalpy(p, h)
@@ -358,8 +364,8 @@ class Refrigerant(Saturation):
         point = self._equation.at(dew.rho, dew.T)
         return abs(point.p / dew.p - 1) < 1e-6 and abs(point.h - dew.h) < 1.0 and abs(point.s - dew.s) < 0.01
 
-    def _held(self, point: Point) -> Point:
-        """The point, if its temperature is inside the range of the equation."""
+    def _held(self, point: State) -> State:
+        """The state, if its temperature is inside the range of the equation."""
         self._need_gas_temperature(point.T)
         return point
 
@@ -369,8 +375,12 @@ def _at_pressure(line: Line, T: float, p: float) -> SaturationState:
     return SaturationState(T, p, h, s, math.exp(ln_rho))
 
 
-def _state(point: Point) -> State:
-    return State(point.T, point.p, point.h, point.s, point.rho)
+def _density_near(near: State | None, T: float, p: float) -> float | None:
+    """A density to start from at (T, p), from a neighbour; None where there is none, or it is too far off."""
+    if near is None or near.quality is not None:
+        return None
+    density = near.density_near(T, p)
+    return density if abs(density / near.rho - 1) < FAR else None
 
 
 @cache

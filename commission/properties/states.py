@@ -6,6 +6,7 @@ of the time.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from typing import NamedTuple
 
@@ -25,7 +26,9 @@ class State(NamedTuple):
     """A state of the refrigerant: T (K), p (Pa absolute), h (J/kg), s (J/(kg K)), rho (kg/m3).
 
     `quality` is the mass fraction of vapour of a two-phase state and None in a single phase. `warnings` are sentences
-    for the person who reads the result.
+    for the person who reads the result. `p_rho` and `p_t` are dp/drho at constant temperature and dp/dT at constant
+    density, `cv` the specific heat at constant volume (J/(kg K)), where the state is a single phase; a state that was
+    closed by a small step has them from before it, good to 1e-5.
     """
 
     T: float
@@ -35,6 +38,38 @@ class State(NamedTuple):
     rho: float
     quality: float | None = None
     warnings: tuple[str, ...] = ()
+    p_rho: float = math.nan
+    p_t: float = math.nan
+    cv: float = math.nan
+
+    @property
+    def h_rho(self) -> float:
+        """dh/drho at constant temperature."""
+        return (self.p_rho - self.T * self.p_t / self.rho) / self.rho
+
+    @property
+    def h_t(self) -> float:
+        """dh/dT at constant density."""
+        return self.cv + self.p_t / self.rho
+
+    @property
+    def s_rho(self) -> float:
+        """ds/drho at constant temperature (a Maxwell relation)."""
+        return -self.p_t / self.rho**2
+
+    @property
+    def s_t(self) -> float:
+        """ds/dT at constant density."""
+        return self.cv / self.T
+
+    @property
+    def cp(self) -> float:
+        """Specific heat at constant pressure."""
+        return self.cv + self.T * self.p_t**2 / (self.rho**2 * self.p_rho)
+
+    def density_near(self, T: float, p: float) -> float:
+        """Density (kg/m3) at a neighbouring `T` (K) and `p` (Pa) in the same phase, to first order."""
+        return self.rho + (p - self.p - self.p_t * (T - self.T)) / self.p_rho
 
 
 @dataclass(frozen=True, slots=True)
