@@ -18,7 +18,9 @@ from commission.properties.saturation import GAS_CONSTANT
 from commission.properties.states import State
 
 SMALL_STEP = 1e-5  # a Newton step this small is closed by the first-order correction: what is left is 1e-10
+LARGE_STEP = 0.2  # relative, in density and temperature: the longest that Newton may take
 MAX_STEPS = 50
+Values = tuple[float, float, float, float, float, float]  # p, h, s, dp/drho, dp/dT, cv
 
 
 class _Tools:
@@ -65,18 +67,22 @@ class Equation:
         Raises:
             PropertyRangeError: the equation gives no number there.
         """
+        p, h, s, p_rho, p_t, cv = self._values(rho, T)
+        return State(T, p, h, s, rho, None, (), p_rho, p_t, cv)
+
+    def _values(self, rho: float, T: float) -> Values:
         tools = self._local.tools
         tools.calls += 1
         try:
             tools.update(tools.inputs, rho, T)
         except ValueError:
             raise self._no_number(rho, T) from None
-        return self._read(tools, rho, T, tools.p(), tools.slope(*tools.by_rho))
+        return self._read(tools, tools.p(), tools.slope(*tools.by_rho))
 
-    def _read(self, tools: _Tools, rho: float, T: float, p: float, p_rho: float) -> State:
-        """What the equation gives where it has just been evaluated, with the pressure and slope read there."""
+    def _read(self, tools: _Tools, p: float, p_rho: float) -> Values:
+        """All values where the equation has just been evaluated, and the pressure and its slope been read."""
         h, s = tools.h() + self.data.h_offset, tools.s() + self.data.s_offset
-        return State(T, p, h, s, rho, None, (), p_rho, tools.slope(*tools.by_T), tools.cv())
+        return p, h, s, p_rho, tools.slope(*tools.by_T), tools.cv()
 
     def density(self, T: float, p: float, start: float) -> State:
         """The single-phase point at (T, p) reached from density `start`, which must lie on the right side.
@@ -97,7 +103,7 @@ class Equation:
                 break
             step = (p - here) / p_rho
             if abs(step) < SMALL_STEP * rho:
-                return _corrected(self._read(tools, rho, T, here, p_rho), step, 0.0)
+                return _closed(rho, T, self._read(tools, here, p_rho), step, 0.0)
             rho += max(-0.5 * rho, min(0.5 * rho, step))
         raise self._lost(T, p)
 
@@ -112,9 +118,10 @@ class Equation:
         Raises:
             PropertyRangeError: no convergence to a mechanically stable state.
         """
-        entropy, point = name == "s", start
+        entropy = name == "s"
+        T, here, h, s, rho, _, _, p_rho, p_t, cv = start
+        evaluated = False
         for _ in range(MAX_STEPS):
-            T, here, h, s, rho, _, _, p_rho, p_t, cv = point
             if not (p_rho > 0 or alike) or not cv > 0:
                 break
             lack, by_volume = p - here, p_t / rho
@@ -125,12 +132,15 @@ class Equation:
             determinant = p_rho * by_T - p_t * by_rho
             d_rho = (lack * by_T - p_t * miss) / determinant
             d_T = (p_rho * miss - lack * by_rho) / determinant
-            size = max(abs(d_rho) / (0.4 * rho), abs(d_T) / (0.15 * T))
-            if size < SMALL_STEP and point is not start:
-                return _corrected(point, d_rho, d_T)
-            share = 1.0 if size <= 1.0 else 1.0 / size
-            point = self.at(rho + share * d_rho, T + share * d_T)
-        raise self._lost(point.T, p)
+            size = max(abs(d_rho) / rho, abs(d_T) / T)
+            if evaluated and size < SMALL_STEP:
+                return _closed(rho, T, (here, h, s, p_rho, p_t, cv), d_rho, d_T)
+            if size > LARGE_STEP:
+                d_rho, d_T = d_rho * LARGE_STEP / size, d_T * LARGE_STEP / size
+            rho, T = rho + d_rho, T + d_T
+            here, h, s, p_rho, p_t, cv = self._values(rho, T)
+            evaluated = True
+        raise self._lost(T, p)
 
     def dense(self, T: float, p: float, largest: float) -> State:
         """The point at (T, p) above the critical pressure, where pressure rises with density: Newton held in a bracket.
@@ -144,14 +154,15 @@ class Equation:
         ideal = p * self.data.molar_mass / (GAS_CONSTANT * T)
         rho = largest if self.data.T_critical >= T else min(ideal, 0.5 * largest)
         for _ in range(4 * MAX_STEPS):
-            point = self.at(rho, T)
-            if point.p > p:
+            values = self._values(rho, T)
+            here, p_rho = values[0], values[3]
+            if here > p:
                 high = min(high, rho)
             else:
                 low = max(low, rho)
-            step = (p - point.p) / point.p_rho if point.p_rho > 0 else math.inf
+            step = (p - here) / p_rho if p_rho > 0 else math.inf
             if abs(step) < SMALL_STEP * rho:
-                return _corrected(point, step, 0.0)
+                return _closed(rho, T, values, step, 0.0)
             rho = rho + step if low < rho + step < high else (low + high) / 2
             if high - low < 1e-12 * largest:
                 break
@@ -168,19 +179,11 @@ class Equation:
         )
 
 
-def _corrected(point: State, d_rho: float, d_T: float) -> State:
-    """The state after a last small step, values to first order."""
-    T, p, h, s, rho, _, _, p_rho, p_t, cv = point
+def _closed(rho: float, T: float, values: Values, d_rho: float, d_T: float) -> State:
+    """The state after a last small step from where the equation gave `values`, these to first order."""
+    p, h, s, p_rho, p_t, cv = values
     by_volume = p_t / rho
-    return State(
-        T + d_T,
-        p + p_rho * d_rho + p_t * d_T,
-        h + (p_rho - T * by_volume) / rho * d_rho + (cv + by_volume) * d_T,
-        s + cv / T * d_T - by_volume / rho * d_rho,
-        rho + d_rho,
-        None,
-        (),
-        p_rho,
-        p_t,
-        cv,
-    )
+    p += p_rho * d_rho + p_t * d_T
+    h += (p_rho - T * by_volume) / rho * d_rho + (cv + by_volume) * d_T
+    s += cv / T * d_T - by_volume / rho * d_rho
+    return State(T + d_T, p, h, s, rho + d_rho, None, (), p_rho, p_t, cv)

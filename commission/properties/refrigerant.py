@@ -24,7 +24,7 @@ if TYPE_CHECKING:
     from commission.properties.two_phase import WetIsobar
 
 
-LIKE = 0.02  # of its pressure: a state as near as that is a good start for another
+LIKE = 0.1  # of its pressure: a state as near as that is a good start for another
 FAR = 0.05  # of its density: what is farther off is not told by first derivatives
 
 

@@ -31,6 +31,8 @@ class Saturation:
         self.p_max = data.p_max
         self.T_low = data.T_low
         self.T_high = data.T_high
+        self._T_least, self._T_most = data.T_low * (1 - EDGE), data.T_high * (1 + EDGE)
+        self._T_sure = NEAR_CRITICAL * data.T_critical
         self.is_blend = len(data.fluids) > 1
         self._dew: Line = data.dew
         self._bubble: Line = data.bubble
@@ -62,7 +64,8 @@ class Saturation:
         Raises:
             PropertyRangeError: `T` outside `T_low`..`T_high`.
         """
-        self._need_temperature(T)
+        if not self._T_least <= T <= self._T_most:
+            raise self._no_saturation(T)
         return math.exp(self._dew.ln_p(T))
 
     def dew_temperature(self, p: float) -> float:
@@ -126,9 +129,10 @@ class Saturation:
         return math.exp(end + slope * self.T_high * (1 - self.T_high / T))
 
     def _saturation(self, line: Line, T: float) -> SaturationState:
-        self._need_temperature(T)
+        if not self._T_least <= T <= self._T_most:
+            raise self._no_saturation(T)
         ln_p, h, s, ln_rho = line.row(T)
-        if NEAR_CRITICAL * self.T_critical < T:
+        if self._T_sure < T:
             return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho), (self._near_critical(T),))
         return SaturationState(T, math.exp(ln_p), h, s, math.exp(ln_rho))
 
@@ -139,12 +143,15 @@ class Saturation:
         )
 
     def _need_temperature(self, T: float) -> None:
-        if not self.T_low * (1 - EDGE) <= T <= self.T_high * (1 + EDGE):
-            raise PropertyRangeError(
-                self.name,
-                f"no saturation at {celsius(T)}; it is known from {celsius(self.T_low)} to {celsius(self.T_high)} "
-                f"(critical temperature {celsius(self.T_critical)})",
-            )
+        if not self._T_least <= T <= self._T_most:
+            raise self._no_saturation(T)
+
+    def _no_saturation(self, T: float) -> PropertyRangeError:
+        return PropertyRangeError(
+            self.name,
+            f"no saturation at {celsius(T)}; it is known from {celsius(self.T_low)} to {celsius(self.T_high)} "
+            f"(critical temperature {celsius(self.T_critical)})",
+        )
 
     def _need_pressure(self, p: float, low: float, high: float) -> None:
         if not low * (1 - EDGE) <= p <= high * (1 + EDGE):
