@@ -11,6 +11,7 @@ from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
 
+TRIALS = 6
 Residuals = Callable[[Sequence[float]], Sequence[float]]
 
 
@@ -49,34 +50,32 @@ def solve(
         NotCalculatedError: the residuals cannot be evaluated at the start.
     """
     x = list(start)
-    r = list(residuals(x))
-    count = 1
+    r = residuals(x)
+    worst, count = _worst(r), 1
     matrix: list[list[float]] | None = [list(row) for row in jacobian] if jacobian is not None else None
     known = matrix
     fresh = False
-    while _worst(r) > tolerance:
+    while worst > tolerance:
         if count >= evaluations:
             raise NoSolutionError("no balance was found: heat and flow do not come together at any condition tried")
         if matrix is None:
             matrix = _differences(residuals, x, r, difference)
             count += len(x)
             fresh = True
-        step = _limited(_linear(matrix, [-v for v in r]), largest_step)
+        step = _linear(matrix, r)
         refused: list[str] = []
-        moved = _move(residuals, x, r, step, refused) if step is not None else None
-        count += moved[3] if moved else 6
+        moved = _move(residuals, x, worst, _limited(step, largest_step), refused) if step is not None else None
+        count += moved[4] if moved else TRIALS
         if moved is None:
             if fresh:
                 why = f", and beyond it: {refused[-1]}" if refused else ""
                 raise NoSolutionError(f"no balance was found: heat and flow do not come together on the way{why}")
             matrix = None
             continue
-        x_new, r_new, taken, _ = moved
-        slow = _worst(r_new) > 0.5 * _worst(r)
-        known = _broyden(matrix, taken, [b - a for a, b in zip(r, r_new, strict=True)])
-        matrix = None if slow and not fresh else known
+        known = _broyden(matrix, moved[1], r, moved[2])
+        matrix = None if moved[3] > 0.5 * worst and not fresh else known
         fresh = False
-        x, r = x_new, r_new
+        x, _, r, worst, _ = moved
     return Solution(tuple(x), tuple(r), count, tuple(tuple(row) for row in (matrix or known or _identity(len(x)))))
 
 
@@ -88,7 +87,7 @@ def _identity(n: int) -> list[list[float]]:
     return [[1.0 if i == j else 0.0 for j in range(n)] for i in range(n)]
 
 
-def _differences(residuals: Residuals, x: list[float], r: list[float], step: float) -> list[list[float]]:
+def _differences(residuals: Residuals, x: list[float], r: Sequence[float], step: float) -> list[list[float]]:
     columns = []
     for j in range(len(x)):
         moved = list(x)
@@ -104,16 +103,16 @@ def _differences(residuals: Residuals, x: list[float], r: list[float], step: flo
     return [[columns[j][i] for j in range(len(x))] for i in range(len(r))]
 
 
-def _linear(matrix: list[list[float]], right: list[float]) -> list[float] | None:
-    """Gauss elimination with row exchange; None where the matrix is singular."""
-    n = len(right)
+def _linear(matrix: list[list[float]], r: Sequence[float]) -> list[float] | None:
+    """The step that undoes the residuals: Gauss elimination with row exchange; None where the matrix is singular."""
+    n = len(r)
     if n == 2:
         (a, b), (c, d) = matrix
         determinant = a * d - b * c
         if abs(determinant) < 1e-14 * max(abs(a), abs(b), abs(c), abs(d), 1.0):
             return None
-        return [(right[0] * d - b * right[1]) / determinant, (a * right[1] - right[0] * c) / determinant]
-    rows = [[*matrix[i], right[i]] for i in range(n)]
+        return [(b * r[1] - r[0] * d) / determinant, (r[0] * c - a * r[1]) / determinant]
+    rows = [[*matrix[i], -r[i]] for i in range(n)]
     for i in range(n):
         pivot = max(range(i, n), key=lambda k: abs(rows[k][i]))
         if abs(rows[pivot][i]) < 1e-14:
@@ -129,41 +128,47 @@ def _linear(matrix: list[list[float]], right: list[float]) -> list[float] | None
     return x
 
 
-def _limited(step: list[float] | None, largest: float) -> list[float] | None:
-    if step is None:
-        return None
-    longest = max(map(abs, step))
+def _limited(step: list[float], largest: float) -> list[float]:
+    longest = _worst(step)
     return step if longest <= largest else [v * largest / longest for v in step]
 
 
 def _move(
-    residuals: Residuals, x: list[float], r: list[float], step: list[float], refused: list[str]
-) -> tuple[list[float], list[float], list[float], int] | None:
-    """Take the step, halved up to five times while it cannot be evaluated or makes things clearly worse.
+    residuals: Residuals, x: list[float], worst: float, step: list[float], refused: list[str]
+) -> tuple[list[float], list[float], Sequence[float], float, int] | None:
+    """Take the step, halved while it cannot be evaluated or makes things clearly worse than `worst`: unknowns, step
+    taken, residuals, the worst of them, and the number of trials.
 
     Reasons why a step could not be evaluated are added to `refused`.
     """
-    for trial in range(6):
+    for trial in range(TRIALS):
         taken = [v * 0.5**trial for v in step] if trial else step
         x_new = [a + b for a, b in zip(x, taken, strict=True)]
         try:
-            r_new = list(residuals(x_new))
+            r_new = residuals(x_new)
         except NotCalculatedError as error:
             refused.append(str(error))
             continue
-        if _worst(r_new) < 1.5 * _worst(r):
-            return x_new, r_new, taken, trial + 1
+        here = _worst(r_new)
+        if here < 1.5 * worst:
+            return x_new, taken, r_new, here, trial + 1
     return None
 
 
-def _broyden(matrix: list[list[float]], step: list[float], change: list[float]) -> list[list[float]]:
+def _broyden(
+    matrix: list[list[float]], step: list[float], before: Sequence[float], after: Sequence[float]
+) -> list[list[float]]:
+    """The matrix that gives the change of the residuals along the step, and is the same across it."""
     square = sum([v * v for v in step])
     if square == 0:
         return matrix
-    n = len(step)
-    if n == 2:
+    if len(step) == 2:
         (a, b), (c, d), (x, y) = *matrix, step
-        first, second = (change[0] - a * x - b * y) / square, (change[1] - c * x - d * y) / square
+        first = (after[0] - before[0] - a * x - b * y) / square
+        second = (after[1] - before[1] - c * x - d * y) / square
         return [[a + first * x, b + first * y], [c + second * x, d + second * y]]
-    gap = [(change[i] - sum(matrix[i][j] * step[j] for j in range(n))) / square for i in range(n)]
-    return [[matrix[i][j] + gap[i] * step[j] for j in range(n)] for i in range(n)]
+    known = []
+    for row, old, new in zip(matrix, before, after, strict=True):
+        gap = (new - old - sum([m * v for m, v in zip(row, step, strict=True)])) / square
+        known.append([m + gap * v for m, v in zip(row, step, strict=True)])
+    return known
