@@ -16,12 +16,12 @@ import numpy as np
 from numpy.polynomial import chebyshev
 
 from commission.machine.single_stage import CondenserCircuit
-from commission.properties import State
+from commission.properties import SaturationState, State
 from commission.properties.lines import Array, nodes, series_at_nodes
 
 Ends = tuple[float, float]
-TERMS, SOME = 8, 5
-"""Terms of a series in a dew temperature, and in superheat or subcooling."""
+TERMS, SOME, MANY = 8, 5, 12
+"""Terms of a series in a dew temperature, in superheat or subcooling, and in the enthalpy at the discharge."""
 
 
 @dataclass(frozen=True)
@@ -62,11 +62,14 @@ class Series:
 
 @dataclass(frozen=True)
 class Chart:
-    """`compression`: flow (kg/s), power (W), enthalpy flow (W) and temperature (K) at the discharge. `gas`: enthalpy at
-    the evaporator outlet, and above its dew point (J/kg). `bubble`: bubble point (K). `liquid`: enthalpy before the
-    valve (J/kg). `drive`: temperature (K) that drives the evaporator, None for a pure fluid."""
+    """`compression`: flow (kg/s), power (W), and enthalpy flow (W) at the discharge. `dew`: enthalpy (J/kg) of the dew
+    point at the discharge pressure, and `discharge`: temperature (K) there, by what its gas is above that enthalpy.
+    `gas`: enthalpy at the evaporator outlet, and above its dew point (J/kg). `bubble`: bubble point (K). `liquid`:
+    enthalpy before the valve (J/kg). `drive`: temperature (K) that drives the evaporator, None for a pure fluid."""
 
     compression: Series
+    dew: Series
+    discharge: Series
     gas: Series
     bubble: Series | None
     liquid: Series
@@ -81,21 +84,36 @@ class Chart:
             NotCalculatedError: the cycle cannot be calculated all over that range.
         """
         evaporating, condensing, excess, superheat, subcooling = ends
-        fluid, near, suctions = circuit.machine.refrigerant, None, dict[tuple[float, float], State]()
+        fluid, suctions = circuit.machine.refrigerant, dict[tuple[float, float], State]()
+        near: State | None = None
+        above: list[float] = []
+
+        def dew(c: float) -> SaturationState:
+            return fluid.dew(fluid.dew_temperature(circuit.high_side(evaporating[0], c)[0]))
+
+        dews = {c: dew(c) for c in _spread(condensing, TERMS)}
 
         def compression(c: float, x: float, e: float) -> tuple[float, ...]:
             nonlocal near
             if (e, x) not in suctions:
                 loss = circuit.machine.suction_line.pressure_loss
-                dew = fluid.dew(e - loss)
-                suctions[e, x] = fluid.superheated(dew, e + x - dew.T)
-            found, near = _compressed(circuit, suctions[e, x], circuit.high_side(e, c)[0], near)
-            return found
+                line = fluid.dew(e - loss)
+                suctions[e, x] = fluid.superheated(line, e + x - line.T)
+            compressor, share = circuit.machine.compressor, circuit.media.speed_share
+            found = compressor.compress(fluid, suctions[e, x], dews[c].p, share, near)
+            near = found.isentropic_end
+            above.append(found.discharge_enthalpy - dews[c].h)
+            return found.flow, found.power, found.flow * found.discharge_enthalpy
+
+        def discharge(c: float, above: float) -> tuple[float]:
+            nonlocal near
+            near = fluid.vapour_from_enthalpy(dews[c].p, dews[c].h + above, near)
+            return (near.T,)
 
         def gas(e: float, s: float) -> tuple[float, ...]:
-            dew = fluid.dew(e)
-            outlet = fluid.superheated(dew, s)
-            return outlet.h, outlet.h - dew.h
+            line = fluid.dew(e)
+            outlet = fluid.superheated(line, s)
+            return outlet.h, outlet.h - line.h
 
         liquid = Series.of(lambda c, s: (circuit.liquid(c, s).h,), (condensing, subcooling), (TERMS, SOME))
         bubble = drive = None
@@ -107,24 +125,16 @@ class Chart:
                 (evaporating, (float(corners.min()), float(corners.max()))),
                 (TERMS, TERMS),
             )
+        charted = Series.of(compression, (condensing, excess, evaporating), (TERMS, terms, TERMS))
         return cls(
-            Series.of(compression, (condensing, excess, evaporating), (TERMS, terms, TERMS)),
+            charted,
+            Series.of(lambda c: (dews[c].h,), (condensing,), (TERMS,)),
+            Series.of(discharge, (condensing, (min(above), max(above))), (TERMS, MANY)),
             Series.of(gas, (evaporating, superheat), (TERMS, SOME)),
             bubble,
             liquid,
             drive,
         )
-
-
-def _compressed(
-    circuit: CondenserCircuit, suction: State, pressure: float, near: State | None
-) -> tuple[tuple[float, ...], State | None]:
-    """Quantities of the compression to `pressure` (Pa), and its end to start a like one; `near` is such an end."""
-    machine = circuit.machine
-    found = machine.compressor.compress(machine.refrigerant, suction, pressure, circuit.media.speed_share, near)
-    h, end = found.discharge_enthalpy, found.isentropic_end
-    discharge = machine.refrigerant.vapour_from_enthalpy(pressure, h, end)
-    return (found.flow, found.power, found.flow * h, discharge.T), end
 
 
 def _terms(value: Array, ends: Ends, count: int) -> Array:

@@ -172,6 +172,7 @@ def _balanced(grid: _Grid) -> tuple[dict[str, Array], Flags] | None:
         return None
     low, condensing, settled = _newton(found, corners)
     values = found.at(low, condensing)
+    values["discharge"] = found.discharge(condensing, values["given"] / values["flow"])
     settled &= (values["inside"] > 0) & (values["dry"] < 1 - LEAST_WETTED)
     control, limit = machine.head_pressure, machine.greatest_evaporating
     if control is not None:
@@ -294,7 +295,7 @@ class _Balances:
         superheat = _within_reach(machine.superheat, difference, machine.superheat_share)
         around = np.array(self.grid.surroundings)
         excess = superheat + line.heating_share * (around - evaporating - superheat) + line.warming
-        flow, power, given, discharge = chart.compression.at(condensing, excess, evaporating)
+        flow, power, given = chart.compression.at(condensing, excess, evaporating)
         outlet, gas = chart.gas.at(evaporating, superheat)
         bubble = condensing if chart.bubble is None else chart.bubble.at(condensing)[0]
         sink_drive, subcooling = self._high(condensing, bubble)
@@ -310,13 +311,17 @@ class _Balances:
             "sink": given - flow * liquid,
             "power": power,
             "flow": flow,
-            "discharge": discharge,
+            "given": given,
             "sink_drive": sink_drive,
             "source_drive": source_drive,
             "gas": flow * gas,
             "dry": flow * gas / (machine.evaporator.gas_share * self._source[2] * zone),
             "inside": self._inside(evaporating, condensing, excess, superheat, subcooling),
         }
+
+    def discharge(self, condensing: Array, enthalpy: Array) -> Array:
+        """Temperature (K) at the discharge by dew point (K) and enthalpy there (J/kg)."""
+        return np.asarray(self.chart.discharge.at(condensing, enthalpy - self.chart.dew.at(condensing)[0])[0])
 
     def _high(self, condensing: Array, bubble: Array) -> tuple[Array, Array]:
         """Temperature that drives the condensers (K), and subcooling (K)."""
