@@ -42,6 +42,20 @@ items:
     assert ids.index("charging.cellar-hatch") == ids.index("charging.detector") + 1
 
 
+def test_an_item_that_is_moved_stands_behind_the_last_that_applies(example_copy: Path) -> None:
+    """A move without a condition always holds; where the item it names does not apply, the one before it counts."""
+    text = """stage: trim
+items:
+  - id: trim.shade
+    do: Put up the shade of the unit.
+    source: owner's house rules
+    move: {to: installation, after: installation.sealed-charge}
+"""
+    order = [item.id for stage in own(example_copy, text) for item in stage.items]
+    assert "installation.sealed-charge" not in order
+    assert order.index("installation.zone") < order.index("trim.shade") < order.index("installation.room-ignition")
+
+
 def test_an_item_is_replaced_by_its_id(example_copy: Path) -> None:
     """The same id replaces the shipped item in its place, and its origin tells."""
     text = """stage: evacuation
