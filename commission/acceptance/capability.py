@@ -130,7 +130,7 @@ def _readings(
     loaded: LoadedPlant, model: SystemModel, values: Mapping[str, float]
 ) -> tuple[list[Reading], dict[str, str]]:
     """A reading for each value that an instrument of the plant can take, and the rest."""
-    system, instruments = loaded.system(model.system_id), loaded.plant.instruments
+    system = loaded.system(model.system_id)
     found, lacking = [], {}
     values = _as_read(loaded, model, values)
     for key, value in values.items():
@@ -138,7 +138,7 @@ def _readings(
         if closed is not None:
             lacking[key] = closed
             continue
-        name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
+        name = choose_instrument(key, value, loaded, system)
         if name is None:
             lacking[key] = NO_INSTRUMENT
         else:

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 
 from commission.acceptance.budget import Measured
 from commission.acceptance.capability import capability
-from commission.acceptance.choosing import cannot_be_read, choose_instrument
+from commission.acceptance.choosing import choose_instrument
 from commission.acceptance.conditions import known_to
 from commission.acceptance.grid import Axis, interpolate, middles, points
 from commission.acceptance.guarantee import Carried, Terms, boundary_differs, carry, terms_of
@@ -288,9 +288,7 @@ def _instrument_for(
 ) -> tuple[tuple[str, ...], float | None]:
     """The instrument that will read an expected value, and the standard uncertainty of the reading."""
     system, instruments = loaded.system(model.system_id), loaded.plant.instruments
-    if cannot_be_read(key, system) is not None:
-        return (), None
-    name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
+    name = choose_instrument(key, value, loaded, system)
     if name is None:
         return (), None
     try:
@@ -317,9 +315,5 @@ def _route_instruments(
     for key in keys:
         value = expected[key].value if key in expected else at.get(key)
         if value is not None:
-            names.append(
-                choose_instrument(
-                    key, value, loaded.plant.instruments, system.measured_with, loaded.barometric_pressure
-                )
-            )
+            names.append(choose_instrument(key, value, loaded, system))
     return tuple(dict.fromkeys(n for n in names if n))

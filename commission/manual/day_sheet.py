@@ -53,7 +53,7 @@ def instrument_words(plant: PlantData, data: SystemData, key: str, value: float 
     named = data.system.measured_with.get(key, "")
     if value is None:
         return named
-    name = choose_instrument(key, value, instruments, data.system.measured_with, loaded.barometric_pressure)
+    name = choose_instrument(key, value, loaded, data.system)
     if name is None:
         return named
     try:
@@ -69,9 +69,8 @@ def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float | None]
     from commission.acceptance.choosing import choose_instrument
 
     instruments, measured = plant.loaded.plant.instruments, data.system.measured_with
-    air = plant.loaded.barometric_pressure
     names = {
-        measured.get(k) if v is None else choose_instrument(k, v, instruments, measured, air) for k, v in wanted.items()
+        measured.get(k) if v is None else choose_instrument(k, v, plant.loaded, data.system) for k, v in wanted.items()
     }
     chosen = {n: i for n, i in instruments.items() if n in names} or instruments
     return [
@@ -104,7 +103,7 @@ def worked_out(data: SystemData, readings: tuple[str, ...]) -> tuple[str, ...]:
 
     keys = [k for k in WORKED_OUT if cannot_be_read(k, data.system) is None and k not in readings]
     if "gas_cooler_outlet_temperature" not in readings:
-        keys.remove("gas_cooler_approach")
+        keys = [k for k in keys if k != "gas_cooler_approach"]
     given = data.model.condition_axes if data.model is not None else {}
     settled = [f"heat_{s}_temperature_change" for s in ("source", "sink") if _both_ends(s) <= set(given)]
     return tuple(k for k in keys if k not in settled)

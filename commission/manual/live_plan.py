@@ -101,11 +101,8 @@ def bare_plan(loaded: LoadedPlant, system: System) -> LivePlan:
 def readings_of(
     loaded: LoadedPlant, system: System, values: Mapping[str, float], conditions: frozenset[str]
 ) -> tuple[str, ...]:
-    """What is read directly: what the plant says it measures, and what it has an instrument for.
-
-    The pipes of a factory-sealed unit lie in a casing that stays shut, unless `measured_with` says otherwise.
-    """
-    from commission.acceptance.choosing import DIRECT, PIPE_TEMPERATURES, cannot_be_read
+    """What is read directly: what the plant says it measures, and what it has an instrument for."""
+    from commission.acceptance.choosing import DIRECT, cannot_be_read
 
     instruments = loaded.plant.instruments
     asked = []
@@ -114,7 +111,7 @@ def readings_of(
             continue
         if key in system.measured_with:
             asked.append(key)
-        elif key in DERIVED or (system.sealed and key in PIPE_TEMPERATURES):
+        elif key in DERIVED:
             continue
         elif key in DIRECT and (key in values or not values):
             fits = instruments_of(loaded, system, (key,), values)[key] is not None
@@ -129,11 +126,8 @@ def instruments_of(
     """The instrument of the plant for each quantity."""
     from commission.acceptance.choosing import choose_instrument
 
-    measured, air = system.measured_with, loaded.barometric_pressure
-    return {
-        k: choose_instrument(k, values[k], loaded.plant.instruments, measured, air) if k in values else measured.get(k)
-        for k in keys
-    }
+    measured = system.measured_with
+    return {k: choose_instrument(k, values[k], loaded, system) if k in values else measured.get(k) for k in keys}
 
 
 def _liquid_flow(key: str, system: System) -> bool:

@@ -16,6 +16,7 @@ from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
     from commission.acceptance import Target, Terms, TestSheet
+    from commission.description import System
 
 SHEET_KEYS = (
     "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
@@ -23,7 +24,7 @@ SHEET_KEYS = (
     "condenser_approach", "evaporator_approach", "subcooling", "heat_source_outlet_temperature",
     "heat_source_outlet_wet_bulb", "heat_sink_outlet_temperature", "power_input", "current",
 )  # fmt: skip
-"""Expectations that are printed on a sheet; a frozen sheet holds all of them."""
+"""Expectations that are printed on a sheet, where they can be read; a frozen sheet holds all of them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -46,8 +47,12 @@ class SheetGrid:
     expected: tuple[SheetLine, ...]
 
 
-def sheet_grids(sheet: TestSheet, display: Display) -> tuple[SheetGrid, ...]:
-    """A sheet as tables: columns along its last axis, one table for each combination of the others."""
+def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[SheetGrid, ...]:
+    """A sheet as tables: columns along its last axis, one table for each combination of the others; a quantity that
+    nobody can read of this system is not asked for."""
+    from commission.acceptance.choosing import cannot_be_read
+
+    asked = [k for k in SHEET_KEYS if cannot_be_read(k, system) is None]
     *outer, last = sheet.axes
     kind = NOMENCLATURE[last.key].kind
     heads = tuple(display.text(v, kind, 0) for v in last.values)
@@ -57,7 +62,7 @@ def sheet_grids(sheet: TestSheet, display: Display) -> tuple[SheetGrid, ...]:
             f"{label_of(a.key).lower()} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True)
         )
         place = slice(n * len(last.values), (n + 1) * len(last.values))
-        expected = [t for t in sheet.targets_for("expectation") if t.key in SHEET_KEYS]
+        expected = [t for t in sheet.targets_for("expectation") if t.key in asked]
         expected.sort(key=lambda t: SHEET_KEYS.index(t.key))
         grids.append(
             SheetGrid(
@@ -144,7 +149,7 @@ def sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: 
         "versions": list(sheet.versions.items()),
         "held": conditions_words(plant, data, sheet.conditions),
         "terms": _terms(sheet, display),
-        "grids": sheet_grids(sheet, display),
+        "grids": sheet_grids(sheet, display, data.system),
         "instruments": [(name, list(words.items())) for name, words in sheet.instruments.items()],
         "plant_name": plant.name,
         "system_name": data.name,

@@ -83,11 +83,7 @@ def _asked(loaded: LoadedPlant, system: str, model: SystemModel | None) -> dict[
     values = {**prediction.conditions, **{k: e.value for k, e in prediction.expected.items() if k not in NEVER_READ}}
     if not loaded.plant.instruments:
         return {k: None for k in NOMENCLATURE if k in values and k in DIRECT and not cannot_be_read(k, system_read)}
-    chosen = {
-        k: choose_instrument(k, v, loaded.plant.instruments, measured_with, loaded.barometric_pressure)
-        for k, v in values.items()
-        if cannot_be_read(k, system_read) is None
-    }
+    chosen = {k: choose_instrument(k, v, loaded, system_read) for k, v in values.items()}
     return {k: chosen[k] for k in NOMENCLATURE if chosen.get(k) is not None}
 
 
@@ -97,10 +93,8 @@ def _with_voltage(loaded: LoadedPlant, system: str, asked: dict[str, str | None]
 
     if "current" not in asked or "voltage" in asked:
         return asked
-    one, site = loaded.system(system), loaded.barometric_pressure
-    meter = choose_instrument(
-        "voltage", one.nameplate.voltage or _USUAL_VOLTAGE, loaded.plant.instruments, one.measured_with, site
-    )
+    one = loaded.system(system)
+    meter = choose_instrument("voltage", one.nameplate.voltage or _USUAL_VOLTAGE, loaded, one)
     found = {**asked, "voltage": meter}
     return {k: found[k] for k in NOMENCLATURE if k in found}
 

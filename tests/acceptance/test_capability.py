@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 from commission.acceptance import Budget, apply_change, capability, decide, make_sheet
-from commission.acceptance.choosing import FROM_PRESSURES, PRESSURES
+from commission.acceptance.choosing import FOLLOWS_FROM, NO_HOOD, PRESSURES
 from commission.description import LoadedPlant
 from commission.errors import InputError
 from commission.prediction import SystemModel, fit
@@ -31,7 +31,8 @@ def test_every_instrument_is_put_to_use(cold_room: LoadedPlant, cold_room_model:
         assert row.expected.value == expected[key].value
         assert row.detectable == pytest.approx(row.budget.expanded())
         assert row.detectable > 0.0
-    assert found.not_read["heat_source_flow"] == "no instrument of the plant reads it"
+    assert found.not_read["heat_source_flow"] == NO_HOOD
+    assert found.not_read["heat_source_relative_humidity"] == "no instrument of the plant reads it"
 
 
 def test_undecidable_guarantee_names_a_change_that_decides(cold_room: LoadedPlant, tmp_path: Path) -> None:
@@ -102,15 +103,18 @@ def test_no_budget_is_empty(cold_room: LoadedPlant, cold_room_model: SystemModel
 
 
 def test_a_factory_sealed_unit_is_offered_no_gauges(tmp_path: Path) -> None:
-    """No ports: pressures and what is worked out from them are left out with the reason; probes and meters stay."""
+    """No ports, and a casing that stays shut: pressures, pipes and what is worked out from them are left out with the
+    reason; meters and the pipe that is named stay."""
     sealed = COLD_ROOM.replace("    refrigerant:", "    sealed: yes\n    refrigerant:", 1)
+    sealed = sealed.replace("measured_with: {", "measured_with: {discharge_temperature: pipe probes, ")
     plant = write_plant(tmp_path / "sealed", sealed)
     model = fit(plant, "cold-room")
     found = capability(plant, model, {SINK: 295.15})
     rows = {r.key for r in found.readings}
-    assert not rows & {*PRESSURES, *FROM_PRESSURES}
+    assert not rows & {*PRESSURES, *FOLLOWS_FROM}
     assert {"discharge_temperature", "power_input"} <= rows
     assert "has no ports" in found.not_read["suction_pressure"]
+    assert "stays shut" in found.not_read["suction_temperature"]
     assert "follows from a pressure" in found.not_read["subcooling"]
     assert found.guarantees[0].verdict.withheld is not None
     assert "suction pressure" in found.guarantees[0].verdict.withheld

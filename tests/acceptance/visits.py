@@ -18,7 +18,7 @@ def visit(
 ) -> tuple[list[Reading], list[Reading]]:
     """Conditions and readings of a plant that reads as expected at `conditions`; a change of None leaves one out."""
     prediction = model.predict(conditions)
-    system, instruments = loaded.system(model.system_id), loaded.plant.instruments
+    system = loaded.system(model.system_id)
     values: dict[str, float | None] = {k: e.value for k, e in prediction.expected.items()}
     values.update(prediction.conditions)
     values.update(changes)
@@ -26,7 +26,7 @@ def visit(
     for key, value in values.items():
         if value is None or (key not in DIRECT and key not in changes):
             continue
-        name = choose_instrument(key, value, instruments, system.measured_with, loaded.barometric_pressure)
+        name = choose_instrument(key, value, loaded, system)
         if name is None and key not in changes:
             continue
         (asked if key in prediction.conditions else read).append(Reading(key, value, name))

@@ -8,11 +8,13 @@ from typing import Any
 
 import pytest
 
-from commission.acceptance.choosing import FROM_PRESSURES, PRESSURES
+from commission.acceptance import make_sheet
+from commission.acceptance.choosing import FOLLOWS_FROM, PRESSURES
 from commission.description import load_plant
 from commission.manual.day_sheet import asked, worked_out
 from commission.manual.grid import temperatures
-from commission.manual.showing import band_text, less_than_zero
+from commission.manual.sheet_pages import sheet_grids
+from commission.manual.showing import band_text, label_of, less_than_zero
 from commission.manual.worked_out import how
 from commission.prediction import fit
 from commission.quantities import Display, Kind
@@ -29,7 +31,7 @@ def test_the_day_sheet_of_a_sealed_unit_has_no_line_for_a_gauge(example_folder: 
     """No pressures, nothing worked out from them, and no pipe inside the casing but the one that is named."""
     plant, data = _system(example_folder, "floor-heating")
     conditions, readings = asked(plant, data)
-    shut = {*PRESSURES, *FROM_PRESSURES, "suction_temperature", "liquid_temperature"}
+    shut = {*PRESSURES, *FOLLOWS_FROM, "suction_temperature", "liquid_temperature"}
     assert not {*conditions, *readings, *worked_out(data, readings)} & shut
     assert {"discharge_temperature", "heat_sink_inlet_temperature"} <= set(readings)
 
@@ -70,3 +72,16 @@ def test_no_column_beyond_the_heating_limit(example_folder: Path) -> None:
     found = temperatures(plant.loaded, "heat_source_inlet_temperature", data.model)
     assert max(found) == pytest.approx(limit)
     assert len(found) > 3
+
+
+def test_the_test_sheet_of_a_sealed_unit_asks_for_what_its_day_sheet_has(example_folder: Path) -> None:
+    """No line for a gauge, nor for a pipe in the casing; the lines that are left can be read."""
+    plant, data = _system(example_folder, "floor-heating")
+    sheet = make_sheet(plant.loaded, data.model, {"heat_source_inlet_temperature": [275.15, 280.15]})
+    lines = sheet_grids(sheet, Display("metric", 101325.0), data.system)[0].expected
+    labels = {line.label.split(",")[0] for line in lines}
+    conditions, readings = asked(plant, data)
+    readable = {label_of(k) for k in (*conditions, *readings, *worked_out(data, readings))}
+    assert labels <= readable
+    assert label_of("heat_source_outlet_temperature") in labels
+    assert {t.key for t in sheet.targets} >= {"suction_temperature", "superheat"}
