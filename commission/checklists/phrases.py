@@ -25,7 +25,7 @@ if TYPE_CHECKING:
 
 
 def _levels(facts: Facts) -> str | None:
-    shown = [f"{level.ppm:,.0f} ppm {level.what} ({level.says})" for level in hazards(facts.substance).people]
+    shown = [f"{level.shown} {level.what} ({level.says})" for level in hazards(facts.substance).people]
     return "; ".join(shown) or None
 
 

@@ -219,7 +219,7 @@ def _words(
     spaces = reachable_spaces(system)
     names = {key: loaded.plant.spaces[key].name or key for key in spaces if key in loaded.plant.spaces}
     where = "; ".join(f"{names.get(key, key)} ({', '.join(parts)})" for key, parts in spaces.items())
-    levels = "; ".join(f"{level.ppm:,.0f} ppm: {level.what}, {level.says}" for level in hazard.people)
+    levels = "; ".join(f"{level.shown}: {level.what}, {level.says}" for level in hazard.people)
     return {
         "system": system.name or system_id,
         "refrigerant": f"{substance.name} (safety class {substance.safety_class})",

@@ -21,6 +21,11 @@ class Level:
     document: str
     mark: str
 
+    @property
+    def shown(self) -> str:
+        """The concentration as a person reads it: 15 000 ppm."""
+        return f"{self.ppm:,.0f} ppm".replace(",", " ")
+
 
 @dataclass(frozen=True, slots=True)
 class Hazards:

@@ -117,7 +117,7 @@ def test_carbon_dioxide_asks_for_its_own_training_and_alarms(example_folder: Pat
     """A1 says nothing of high pressure; 5000 and 15 000 ppm are the limits of EH40 for 8 h and 15 min."""
     found = listed(example_folder, "shower-water")
     assert "alone proves nothing" in (found["readiness.competence"].how or "")
-    assert "5000 ppm and 15 000 ppm" in says(found["charging.detector-people"])
+    assert "5 000 ppm and 15 000 ppm" in says(found["charging.detector-people"])
     assert found["charging.detector-people"].if_not == "The cylinder stays shut."
     assert "or its safety class A3" in (listed(example_folder, "cold-room")["readiness.competence"].how or "")
 
