@@ -177,6 +177,7 @@ BEFORE = [
     ("installation.oil-drains", "charging.weigh"),
     ("flows.leak-into-liquid", "charging.weigh"),
     ("performance.suction-pressure", "performance.sheet"),
+    ("performance.hot-water", "performance.suction-pressure"),
     ("readiness.breathing", "charging.weigh"),
     ("installation.ventilation", "charging.weigh"),
     ("installation.relief-outlet", "charging.weigh"),
