@@ -14,7 +14,7 @@ from commission.acceptance.budget import Budget, Component, Measured, propagate
 from commission.acceptance.derived import explained
 from commission.acceptance.routes import RouteResult, Side, library, need, relative
 from commission.errors import NotCalculatedError
-from commission.quantities import Input, Kind
+from commission.quantities import NOMENCLATURE, Input, Kind, Quantity
 
 if TYPE_CHECKING:
     from commission.description.model import Medium
@@ -26,7 +26,13 @@ OFF_COIL = "heat_source_outlet_wet_bulb"
 WET_COIL = "the coil is wet (the dew point of the air lies above the evaporating temperature)"
 
 
-def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[str, Measured]) -> RouteResult:
+def air_side(
+    medium: Medium,
+    side: Side,
+    barometric: float,
+    readings: Mapping[str, Measured],
+    names: Mapping[str, Quantity] = NOMENCLATURE,
+) -> RouteResult:
     """Heat taken from or given to air, in W, from its flow, temperatures and, where water condenses, wet bulb.
 
     Air that neither loses nor gains water: Q = V rho_dry(T_in) cp |T_in - T_out|, cp per kg of dry air. With the wet
@@ -40,7 +46,7 @@ def air_side(medium: Medium, side: Side, barometric: float, readings: Mapping[st
     if medium.medium != "air":
         raise NotCalculatedError(f"the heat {side} is {medium.medium}")
     inlet, outlet, flow = (f"heat_{side}_{x}" for x in ("inlet_temperature", "outlet_temperature", "flow"))
-    need(readings, inlet, outlet, flow)
+    need(readings, names, inlet, outlet, flow)
     humidity = readings.get(f"heat_{side}_relative_humidity")
     if side == "source":
         why_wet = _may_be_wet(readings, humidity, barometric)

@@ -163,11 +163,11 @@ def _with_inlets(readings: list[Reading], conditions: Mapping[str, float], model
 
 
 def _guarantee(loaded: LoadedPlant, model: SystemModel, terms: Terms, found: Evaluation) -> GuaranteeCapability:
-    points = loaded.system(model.system_id).rated_points
-    judged = verdict(terms, found, lambda: carry(terms, found.all_read, model, points))
+    points, shown = loaded.system(model.system_id).rated_points, model.facts.shown
+    judged = verdict(terms, found, lambda: carry(terms, found.all_read, model, points), names=shown.quantities)
     decided = judged.outcome != "undecided"
     change = None
     if not decided and judged.decision is not None and judged.budget is not None:
         needed = judged.decision.uncertainty_needed
         change = smallest_change(judged.budget, needed, judged.decision.confidence) if needed else None
-    return GuaranteeCapability(terms, judged, decided, change, coarse(judged))
+    return GuaranteeCapability(terms, judged, decided, change, coarse(judged, shown))

@@ -143,7 +143,7 @@ def _named(component: Component) -> str:
     """A component in words: which reading, and what of it."""
     known = NOMENCLATURE.get(component.of)
     about = known is not None and component.cause.startswith(f"{component.of}:")
-    return f"{component.name} ({known.label.lower()})" if known is not None and about else component.name
+    return f"{component.name} ({known.words})" if known is not None and about else component.name
 
 
 def _largest_factor(fits: Callable[[float], bool]) -> float | None:

@@ -57,13 +57,13 @@ def day_condition(model: SystemModel, measured: Mapping[str, Measured]) -> DayCo
     Where the end of a medium by which the system is rated was not read, the other end stands for it, and that is said;
     not so the outlet of air, which no single probe reads mixed. A humidity that was read goes before a wet bulb.
     """
-    used, said = {}, []
+    used, said, words = {}, [], model.facts.shown.words
     for key in model.condition_axes:
         if key in measured:
             used[key] = measured[key]
         elif _stands_for(model, key) and other_end(key) in measured:
             used[other_end(key)] = measured[other_end(key)]
-            said.append(f"{_label(key)} was not read: the condition is taken from {_label(other_end(key))}")
+            said.append(f"{words(key)} was not read: the condition is taken from {words(other_end(key))}")
     if WET not in measured or HUMIDITY not in model.condition_axes:
         return DayCondition(used, warnings=tuple(said))
     if HUMIDITY in measured:
@@ -83,10 +83,6 @@ def _stands_for(model: SystemModel, key: str) -> bool:
         return False
     liquid = model.facts.source_liquid if key.startswith("heat_source") else model.facts.sink_liquid
     return other.endswith("_inlet_temperature") or liquid is not None
-
-
-def _label(key: str) -> str:
-    return NOMENCLATURE[key].label.lower()
 
 
 def with_air(measured: Mapping[str, Measured], wanted: Collection[str], pressure: float) -> Mapping[str, Measured]:
@@ -138,7 +134,7 @@ def _humidity_of(measured: Mapping[str, Measured], pressure: float) -> tuple[Mea
     from commission.properties import moist_air
 
     if DRY not in measured:
-        raise NotCalculatedError("it needs a reading of the dry bulb, heat source inlet temperature")
+        raise NotCalculatedError("it needs a reading of the dry bulb where the air enters")
     inputs = _inputs(measured, (DRY, WET), pressure)
     above = inputs[WET].value - inputs[DRY].value
     warning: tuple[str, ...] = ()
@@ -182,7 +178,7 @@ def _slope(function: Callable[..., float], values: Mapping[str, float], name: st
         except NotCalculatedError:
             continue
         return (high - low) / (above + below)
-    raise NotCalculatedError(f"no air has a {NOMENCLATURE[name].label.lower()} near this one")
+    raise NotCalculatedError(f"no air is near this one in {NOMENCLATURE[name].kind.value}")
 
 
 def missing_temperature(model: SystemModel, used: Collection[str]) -> str | None:

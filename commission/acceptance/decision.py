@@ -144,3 +144,10 @@ def _check(value: float, u: float, lower: float | None, upper: float | None, con
         raise ValueError(f"the lower limit {lower:g} lies above the upper limit {upper:g}")
     if not 0.5 < confidence < 1.0:
         raise ValueError(f"a confidence between 0.5 and 1 is wanted, not {confidence:g}")
+
+
+def sure_text(probability: float) -> str:
+    """A probability in per cent; nothing measured is certain, so none is said to be 100.0 or 0.0."""
+    if probability > 0.999:
+        return "more than 99.9 %"
+    return "less than 0.1 %" if probability < 0.001 else f"{100.0 * probability:.1f} %"

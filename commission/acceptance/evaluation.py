@@ -30,7 +30,7 @@ from commission.acceptance.routes import (
 )
 from commission.acceptance.supply import supply
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE
+from commission.quantities import NOMENCLATURE, Quantity
 
 if TYPE_CHECKING:
     from commission.acceptance.sheet import TestSheet
@@ -127,8 +127,9 @@ def evaluate(
     wrong (the keys of `routes.UPSETS`).
     """
     not_judged: dict[str, str] = {}
-    asked, read = list(conditions), list(readings)
-    measured = _measure_all(loaded, [*asked, *read], on, not_judged)
+    asked, read, words = list(conditions), list(readings), model.facts.shown.words
+    names = model.facts.shown.quantities
+    measured = _measure_all(loaded, [*asked, *read], on, not_judged, names)
     day = day_condition(model, measured)
     used = dict(day.used)
     not_judged.update(day.unused)
@@ -136,13 +137,10 @@ def evaluate(
     warnings += day.warnings
     prediction, why, spent = _predict(model, used, measured)
     not_judged.update(spent)
-    warnings += [
-        f"{NOMENCLATURE[SPEED].label.lower()} was not read: inferred from {NOMENCLATURE[k].label.lower()}"
-        for k in spent
-    ]
+    warnings += [f"{words(SPEED)} was not read: inferred from {words(k)}" for k in spent]
     if prediction is not None:
         warnings += prediction.warnings
-        warnings += [f"{NOMENCLATURE[k].label.lower()} was not read: taken as designed" for k in prediction.filled]
+        warnings += [f"{words(k)} was not read: taken as designed" for k in prediction.filled]
     inputs = live(loaded, model, prediction) if sheet is None else from_sheet(sheet, used)
     derived = {k: Derived(used[k], e) for k, e in day.derived.items()}
     derived.update(_safely(lambda: derive(model.refrigerant, measured, model, prediction), not_judged))
@@ -183,7 +181,11 @@ def _settled(used: Mapping[str, Measured], have: Mapping[str, Measured]) -> dict
 
 
 def _measure_all(
-    loaded: LoadedPlant, readings: list[Reading], on: dt.date | None, not_judged: dict[str, str]
+    loaded: LoadedPlant,
+    readings: list[Reading],
+    on: dt.date | None,
+    not_judged: dict[str, str],
+    names: Mapping[str, Quantity],
 ) -> dict[str, Measured]:
     """Every reading with its budget; a barometer that was read narrows all gauges."""
     instruments, site = loaded.plant.instruments, loaded.barometric_pressure
@@ -191,13 +193,13 @@ def _measure_all(
     standard = None
     if air is not None:
         try:
-            standard = measure(air, instruments, 0.0, on).budget.standard
+            standard = measure(air, instruments, 0.0, on, names=names).budget.standard
         except NotCalculatedError:
             standard = None
     found: dict[str, Measured] = {}
     for reading in readings:
         try:
-            found[reading.key] = measure(reading, instruments, air.value if air else site, on, standard)
+            found[reading.key] = measure(reading, instruments, air.value if air else site, on, standard, names=names)
         except NotCalculatedError as error:
             not_judged[reading.key] = str(error)
     return found
@@ -212,7 +214,7 @@ def _predict(
     """
     lacking = missing_temperature(model, used)
     if lacking is not None:
-        return None, f"{NOMENCLATURE[lacking].label.lower()} was not read: without it nothing can be expected", {}
+        return None, f"{model.facts.shown.words(lacking)} was not read: without it nothing can be expected", {}
     spent: dict[str, str] = {}
     try:
         if SPEED in model.condition_axes and SPEED not in used:
@@ -233,7 +235,7 @@ def _expectations(
     not_judged: dict[str, str],
 ) -> Mapping[str, Expectation]:
     if sheet is not None:
-        found, reasons = sheet.expectations(used)
+        found, reasons = sheet.expectations(used, model.facts.shown.quantities)
         not_judged.update(reasons)
         return found
     if prediction is None or why:
@@ -260,6 +262,7 @@ def _routes(
 ) -> tuple[list[RouteResult], list[Refusal]]:
     """Every route to every capacity: what it gives, or why it is refused."""
     system = loaded.system(model.system_id)
+    names = model.facts.shown.quantities
     states = {**have, **({"compressor_power": power} if power else {})}
     results = [heat_meter(have[key]) for key in ("cooling_capacity", "heating_capacity") if key in have]
     refusals: list[Refusal] = []
@@ -272,7 +275,7 @@ def _routes(
 
     balance = partial(
         compressor_heat_balance, model.refrigerant, states, shell=inputs.shell, line_gain=inputs.gain,
-        compressor=system.compressor.type, upsets=upsets,
+        compressor=system.compressor.type, upsets=upsets, names=names,
     )  # fmt: skip
     air = loaded.barometric_pressure
     sides: tuple[tuple[str, Side, Medium], ...] = (
@@ -282,8 +285,8 @@ def _routes(
     for key, side, medium in sides:
         attempt("compressor heat balance", key, partial(balance, key=key))
         if not any(r.route == "liquid side" and r.measured.key == key for r in results):
-            attempt("liquid side", key, partial(liquid_side, medium, side, have))
-        attempt("air side", key, partial(air_side, medium, side, air, have))
+            attempt("liquid side", key, partial(liquid_side, medium, side, have, names))
+        attempt("air side", key, partial(air_side, medium, side, air, have, names))
     return results, refusals
 
 

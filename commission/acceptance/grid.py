@@ -8,7 +8,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE
+from commission.quantities import NOMENCLATURE, Quantity
 
 _SLACK = 1e-6
 
@@ -36,14 +36,19 @@ def middles(axes: Sequence[Axis]) -> list[dict[str, float]]:
 
 
 def interpolate(
-    axes: Sequence[Axis], values: Sequence[float], at: Mapping[str, float]
+    axes: Sequence[Axis],
+    values: Sequence[float],
+    at: Mapping[str, float],
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> tuple[float, dict[str, float]]:
     """Value at a point, and its slope along each axis, linear along each axis between grid points.
+
+    `names` is the nomenclature of the system.
 
     Raises:
         NotCalculatedError: a condition is missing, or lies outside the grid.
     """
-    cells = [_cell(axis, at) for axis in axes]
+    cells = [_cell(axis, at, names) for axis in axes]
     value = 0.0
     slopes = dict.fromkeys((a.key for a in axes), 0.0)
     for corner in itertools.product((0, 1), repeat=len(axes)):
@@ -60,9 +65,9 @@ def interpolate(
     return value, slopes
 
 
-def _cell(axis: Axis, at: Mapping[str, float]) -> tuple[int, float]:
+def _cell(axis: Axis, at: Mapping[str, float], names: Mapping[str, Quantity]) -> tuple[int, float]:
     """Number of the cell along an axis and the share of it below the point."""
-    label = NOMENCLATURE[axis.key].label.lower()
+    label = names[axis.key].words
     if axis.key not in at:
         raise NotCalculatedError(f"it needs a reading of {label}")
     x, values = at[axis.key], axis.values

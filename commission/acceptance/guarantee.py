@@ -62,8 +62,12 @@ class Terms:
 
     def coarser_than_tolerance(self, expanded: float, value: float) -> bool:
         """Whether a test with this expanded uncertainty is coarser than the tolerance that is meant to hold it."""
-        stated = [t for t in (self.below, self.above) if t]
-        return bool(stated) and expanded > min(stated) * value
+        return self.tightest > 0.0 and expanded > self.tightest * value
+
+    @property
+    def tightest(self) -> float:
+        """The smaller of the stated tolerances as a share of the value; 0 where none is stated."""
+        return min((t for t in (self.below, self.above) if t), default=0.0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,7 +160,7 @@ def by_model(
     key = terms.quantity
     for condition in terms.at:
         if not known_to(model, condition):
-            label = NOMENCLATURE[condition].label.lower()
+            label = model.facts.shown.words(condition)
             raise NotCalculatedError(f"the design model does not depend on {label}, which the guarantee states")
     there = there or model.predict(dict(terms.at))
     day = model.predict(day_values, as_stated=unread)
@@ -210,7 +214,7 @@ def supplier_grid(quantity: str, rated_points: Sequence[RatedPoint]) -> tuple[tu
     rows = [(stated_conditions(p), v) for p in rated_points if (v := _rated_value(quantity, p)) is not None]
     keys = sorted({k for at, _ in rows for k in at})
     varying = [k for k in keys if len({at.get(k) for at, _ in rows}) > 1]
-    label = NOMENCLATURE[quantity].label.lower()
+    label = NOMENCLATURE[quantity].words
     if len(rows) < 2 or not varying:
         raise NotCalculatedError(f"the supplier's table needs at least two rated points that state {label}")
     if any(k not in at for at, _ in rows for k in varying):
@@ -249,7 +253,7 @@ def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemMod
     used = {}
     conditions = with_air(conditions, terms.at, model.facts.pressure)
     for key, wanted in terms.at.items():
-        label = NOMENCLATURE[key].label.lower()
+        label = model.facts.shown.words(key)
         if key not in conditions:
             raise NotCalculatedError(f"it needs a reading of {label}")
         kind = NOMENCLATURE[key].kind
@@ -264,7 +268,7 @@ def as_stated(terms: Terms, conditions: Mapping[str, Measured], model: SystemMod
         slope = slopes.get(key, 0.0)
         if slope:
             off = Component(
-                f"{NOMENCLATURE[key].label.lower()} not quite as stated",
+                f"{model.facts.shown.words(key)} not quite as stated",
                 slope * (measured.value - wanted_there[key]) / math.sqrt(3.0), "rectangular",
                 source="difference of the day from the stated condition times the sensitivity of the model", of=key,
                 remedy="test nearer to the condition of the guarantee",

@@ -9,7 +9,6 @@ from typing import TYPE_CHECKING
 from commission.acceptance.budget import Measured, combine
 from commission.acceptance.expectation import model_budget
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction, SystemModel
@@ -39,7 +38,7 @@ def infer_speed(model: SystemModel, used: Mapping[str, Measured], measured: Mapp
         NotCalculatedError: no such reading, or no speed within the limits of the machine explains it.
     """
     key = next((k for k in SPENT_ON_SPEED if k in measured), None)
-    label = NOMENCLATURE[SPEED].label.lower()
+    label = model.facts.shown.words(SPEED)
     if key is None:
         raise NotCalculatedError(f"{label} was not read, and neither power nor current from which to infer it")
     axis, read = model.condition_axes[SPEED], measured[key]
@@ -49,14 +48,14 @@ def infer_speed(model: SystemModel, used: Mapping[str, Measured], measured: Mapp
         prediction, slopes = model.predict(at), model.sensitivities(at)
         slope = slopes.get(key, {}).get(SPEED, 0.0)
         if key not in prediction.expected or slope <= 0.0:
-            raise NotCalculatedError(f"{label} was not read, and {NOMENCLATURE[key].label.lower()} does not tell it")
+            raise NotCalculatedError(f"{label} was not read, and {model.facts.shown.words(key)} does not tell it")
         step = (read.value - prediction.expected[key].value) / slope
         if abs(step) < _CLOSE * axis.rated:
             return Inferred(_with_budget(model, prediction, slopes[key], used, read, speed), key)
         speed = min(max(speed + step, 0.8 * axis.low), 1.2 * axis.high)
     raise NotCalculatedError(
         f"{label} was not read, and none from {axis.low * 60:.0f} to {axis.high * 60:.0f} rpm explains the "
-        f"{NOMENCLATURE[key].label.lower()} that was"
+        f"{model.facts.shown.words(key)} that was"
     )
 
 

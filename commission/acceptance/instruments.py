@@ -13,7 +13,7 @@ from typing import Any
 from commission.acceptance.budget import Budget, Component, Measured, spread_of
 from commission.description.model import Instrument
 from commission.errors import NotCalculatedError, Problem, nearest
-from commission.quantities import NOMENCLATURE, Kind, Reference
+from commission.quantities import NOMENCLATURE, Kind, Quantity, Reference
 
 _WORD_OF_KIND: Mapping[Kind, str] = {
     Kind.TEMPERATURE: "temperature",
@@ -153,6 +153,7 @@ def instrument_budget(
     *,
     name: str = "instrument",
     barometric_standard: float | None = None,
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> Budget:
     """Uncertainty of one reading of quantity `key` (a nomenclature key) with value `value` in SI.
 
@@ -160,13 +161,14 @@ def instrument_budget(
     the spread of samples is type A (4.2.3). A gauge counts from the air pressure `barometric` (Pa), whose own standard
     uncertainty in Pa is `barometric_standard` (from the library where None) and is shared by all gauges. A matched
     pair shares its class error, so that it cancels in a difference. A stated drift per year counts from the
-    calibration to the day `on`; nothing is assumed where it is not stated. `name` is the id of the instrument.
+    calibration to the day `on`; nothing is assumed where it is not stated. `name` is the id of the instrument, `names`
+    the nomenclature of the system.
 
     Raises:
         NotCalculatedError: the statement of the instrument is incomplete, or it measures something else.
     """
     kind = NOMENCLATURE[key].kind
-    label = NOMENCLATURE[key].label.lower()
+    label = names[key].words
     if instrument.resolved.kind is not kind:
         raise NotCalculatedError(f"{name} measures {instrument.measures}; {label} is a {kind.value}")
     gauge = instrument.resolved.reference is Reference.GAUGE
@@ -186,7 +188,12 @@ def instrument_budget(
 
 
 def assumed_budget(
-    key: str, value: float, barometric: float, samples: Sequence[float] | None = None, reason: str = "not stated"
+    key: str,
+    value: float,
+    barometric: float,
+    samples: Sequence[float] | None = None,
+    reason: str = "not stated",
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> Budget:
     """Uncertainty of a reading whose instrument is not stated: what is usual, shown as assumed, with a warning.
 
@@ -200,7 +207,7 @@ def assumed_budget(
         return Budget()
     usual = kind is not Kind.RATIO or key.endswith("relative_humidity")
     entry = library()["not_stated"].get(_WORD_OF_KIND.get(kind)) if usual else None
-    label = NOMENCLATURE[key].label.lower()
+    label = names[key].words
     if entry is None:
         raise NotCalculatedError(
             f"the instrument for {label} is {reason}, and nothing usual is known for a {kind.value}"
@@ -230,6 +237,8 @@ def measure(
     barometric: float,
     on: dt.date | None = None,
     barometric_standard: float | None = None,
+    *,
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> Measured:
     """A reading with its budget; an instrument that is not stated, or not well enough, is assumed with a warning.
 
@@ -239,16 +248,17 @@ def measure(
     samples = reading.samples or None
     instrument = instruments.get(reading.instrument) if reading.instrument else None
     if instrument is None or reading.instrument is None:
-        return Measured(reading.key, reading.value, assumed_budget(reading.key, reading.value, barometric, samples))
+        budget = assumed_budget(reading.key, reading.value, barometric, samples, names=names)
+        return Measured(reading.key, reading.value, budget)
     try:
         statement(instrument)
     except NotCalculatedError as error:
         reason = f"not stated well enough ({reading.instrument}: {error.problems[0].message})"
-        budget = assumed_budget(reading.key, reading.value, barometric, samples, reason)
+        budget = assumed_budget(reading.key, reading.value, barometric, samples, reason, names)
         return Measured(reading.key, reading.value, budget)
     budget = instrument_budget(
         instrument, reading.key, reading.value, barometric, on, samples,
-        name=reading.instrument, barometric_standard=barometric_standard,
+        name=reading.instrument, barometric_standard=barometric_standard, names=names,
     )  # fmt: skip
     return Measured(reading.key, reading.value, budget)
 

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any, Literal
 from commission.acceptance.budget import Budget, Measured, combine
 from commission.acceptance.changes import with_advice
 from commission.acceptance.closure import Closure
-from commission.acceptance.decision import Decision, Outcome, decide
+from commission.acceptance.decision import Decision, Outcome, decide, sure_text
 from commission.acceptance.derived import Derived
 from commission.acceptance.evaluation import Evaluation, evaluate
 from commission.acceptance.expectation import Deviation, Expectation
@@ -21,7 +21,7 @@ from commission.acceptance.instruments import Reading
 from commission.acceptance.routes import Refusal, RouteResult
 from commission.acceptance.steadiness import Steadiness, WholeCycles, steadiness
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE, Explained
+from commission.quantities import NOMENCLATURE, Display, Explained, Quantity
 
 if TYPE_CHECKING:
     from commission.acceptance.sheet import TestSheet
@@ -138,6 +138,7 @@ def judge(
     still = steadiness(
         [*asked, *read], since_start, since_defrost, limits=chosen, liquid_sides=liquid,
         defrosts=system.evaporator.defrost is not None, cycles=cycles,
+        names=model.facts.shown.quantities,
     )  # fmt: skip
     verdicts: list[GuaranteeVerdict] = []
     if mode == "test":
@@ -152,7 +153,7 @@ def judge(
         warnings.append(f"the test sheet is one of {sheet.system}, not of {model.system_id}")
     if mode == "test" and verdicts and sheet is None:
         warnings.append(NO_SHEET)
-    warnings += [text for text in map(coarse, verdicts) if text]
+    warnings += [text for text in (coarse(v, model.facts.shown) for v in verdicts) if text]
     return Judgement(
         model.system_id, mode, found.conditions, found.measured, found.derived, found.expectations, found.deviations,
         found.routes, found.refusals, found.closures, tuple(verdicts), still, found.impossible, found.not_judged,
@@ -160,19 +161,25 @@ def judge(
     )  # fmt: skip
 
 
-def coarse(verdict: GuaranteeVerdict) -> str | None:
+def coarse(verdict: GuaranteeVerdict, shown: Display) -> str | None:
     """What to say where the contract's rule decides although the test is coarser than the tolerance."""
     decision, budget, carried = verdict.decision, verdict.budget, verdict.guaranteed
     if decision is None or budget is None or carried is None or verdict.outcome == "undecided":
         return None
     if decision.rule != "simple" or not verdict.terms.coarser_than_tolerance(budget.expanded(), carried.value):
         return None
-    share = 100 * budget.expanded() / carried.value
+    test, tolerance = apart(budget.expanded() / carried.value, verdict.terms.tightest)
     return (
-        f"{NOMENCLATURE[verdict.terms.quantity].label}: the test (± {share:.0f} %) is coarser than the tolerance. The "
-        "contract's simple rule decides all the same; the plant conforms with a "
-        f"probability of {100 * decision.probability_of_conformity:.0f} %"
+        f"{shown.label(verdict.terms.quantity)}: the test (± {test} %) is coarser than the tolerance ({tolerance} %). "
+        "The contract's simple rule decides all the same; the plant conforms with a probability of "
+        f"{sure_text(decision.probability_of_conformity)}"
     )
+
+
+def apart(one: float, other: float) -> tuple[str, str]:
+    """Two unlike shares as per cent, with the digits that it takes to tell them apart."""
+    texts = [(f"{100 * one:.{digits}f}", f"{100 * other:.{digits}f}") for digits in range(7)]
+    return next((pair for pair in texts if pair[0] != pair[1]), texts[-1])
 
 
 def withheld_by(contradictions: Iterable[Impossible], still: Iterable[Steadiness]) -> str | None:
@@ -187,9 +194,12 @@ def _verdicts(
 ) -> list[GuaranteeVerdict]:
     from commission.prediction import boundary
 
+    names = model.facts.shown.quantities
     if sheet is not None:
         return [
-            verdict(t.terms, found, partial(sheet.carried, t, found.conditions), withheld, frozen=True)
+            verdict(
+                t.terms, found, partial(sheet.carried, t, found.conditions, names), withheld, frozen=True, names=names
+            )
             for t in sheet.targets_for("guarantee")
             if t.terms is not None
         ]
@@ -198,7 +208,7 @@ def _verdicts(
     return [
         verdict(
             terms, found, partial(carry, terms, found.all_read, model, system.rated_points),
-            withheld or boundary_differs(terms, counted),
+            withheld or boundary_differs(terms, counted), names=names,
         )
         for terms in map(terms_of, system.guarantee)
     ]  # fmt: skip
@@ -210,12 +220,14 @@ def verdict(
     carried_by: Callable[[], Carried],
     withheld: str | None = None,
     frozen: bool = False,
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> GuaranteeVerdict:
-    """One guarantee judged by the evaluated readings; `carried_by()` gives the guaranteed value of the day."""
+    """One guarantee judged by the evaluated readings; `carried_by()` gives the guaranteed value of the day, `names` is
+    the nomenclature of the system."""
     try:
         measured, route = found.quantity(terms.quantity, terms.route)
     except NotCalculatedError as error:
-        reason = f"{NOMENCLATURE[terms.quantity].label.lower()} could not be measured: {error}"
+        reason = f"{names[terms.quantity].words} could not be measured: {error}"
         return GuaranteeVerdict(terms, None, None, terms.route, None, None, withheld or reason, frozen)
     try:
         carried = carried_by()

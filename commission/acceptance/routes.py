@@ -18,7 +18,7 @@ from commission.acceptance.budget import Budget, Component, Measured, combine, p
 from commission.acceptance.derived import Derived, explained
 from commission.acceptance.expectation import model_cause
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE, Input, Kind
+from commission.quantities import NOMENCLATURE, Input, Kind, Quantity
 
 if TYPE_CHECKING:
     from commission.description.model import Medium
@@ -98,13 +98,13 @@ def shell_share(
     return Measured("shell heat loss share", value, Budget((component,) if standard else ()))
 
 
-def need(have: Mapping[str, Measured], *keys: str) -> None:
-    """Refuse where a reading is missing.
+def need(have: Mapping[str, Measured], names: Mapping[str, Quantity], *keys: str) -> None:
+    """Refuse where a reading is missing; `names` is the nomenclature of the system.
 
     Raises:
         NotCalculatedError: one of `keys` is not in `have`.
     """
-    lacking = [NOMENCLATURE[k].label.lower() for k in keys if k not in have]
+    lacking = [names[k].words for k in keys if k not in have]
     if lacking:
         raise NotCalculatedError(f"it needs a reading of {', '.join(lacking)}")
 
@@ -118,6 +118,7 @@ def compressor_heat_balance(
     line_gain: Measured | None = None,
     compressor: str | None = None,
     upsets: Collection[str] = (),
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> RouteResult:
     """Cooling or heating capacity from refrigerant states and the power of the compressor.
 
@@ -139,7 +140,7 @@ def compressor_heat_balance(
             "a screw compressor's oil takes heat out of it: its power does not all go into the gas"
         )
     need(
-        readings, "suction_pressure", "suction_temperature", "discharge_pressure", "discharge_temperature",
+        readings, names, "suction_pressure", "suction_temperature", "discharge_pressure", "discharge_temperature",
         "liquid_temperature", "compressor_power",
     )  # fmt: skip
     _refuse_wet_suction(readings)
@@ -208,7 +209,9 @@ def _refuse_flash_gas(readings: Mapping[str, Measured]) -> None:
         raise NotCalculatedError("the liquid line is above its bubble point: flash gas, whose enthalpy is not known")
 
 
-def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) -> RouteResult:
+def liquid_side(
+    medium: Medium, side: Side, readings: Mapping[str, Measured], names: Mapping[str, Quantity] = NOMENCLATURE
+) -> RouteResult:
     """Heat taken from a liquid source or given to a liquid sink, from its flow and temperatures.
 
     Q = V rho(T_in) cp(T_mean) |T_in - T_out|; the flow is a volume flow at the inlet state (see the nomenclature). For
@@ -222,7 +225,7 @@ def liquid_side(medium: Medium, side: Side, readings: Mapping[str, Measured]) ->
     if medium.medium == "air":
         raise NotCalculatedError(f"the heat {side} is air")
     inlet, outlet, flow = (f"heat_{side}_{x}" for x in ("inlet_temperature", "outlet_temperature", "flow"))
-    need(readings, inlet, outlet, flow)
+    need(readings, names, inlet, outlet, flow)
     fraction = Measured("mass fraction", medium.mass_fraction or 0.0)
     if medium.medium != "water":
         if medium.mass_fraction is None:

@@ -17,7 +17,7 @@ from commission.acceptance.expectation import Expectation
 from commission.acceptance.grid import Axis, interpolate
 from commission.acceptance.guarantee import Carried, Terms
 from commission.errors import InputError, NotCalculatedError
-from commission.quantities import NOMENCLATURE, Explained, Input
+from commission.quantities import NOMENCLATURE, Explained, Input, Quantity
 
 Purpose = Literal["guarantee", "expectation"]
 _ROOT_3 = math.sqrt(3.0)
@@ -93,17 +93,19 @@ class TestSheet:
         """The lines of one purpose."""
         return tuple(t for t in self.targets if t.purpose == purpose)
 
-    def value_at(self, target: Target, conditions: Mapping[str, Measured]) -> tuple[float, Budget]:
+    def value_at(
+        self, target: Target, conditions: Mapping[str, Measured], names: Mapping[str, Quantity] = NOMENCLATURE
+    ) -> tuple[float, Budget]:
         """A target at the measured condition, read between the points, with its budget.
 
         A condition that the sheet holds at one value and that was read moves it along the frozen slope, and is then
-        known: only its reading is uncertain.
+        known: only its reading is uncertain. `names` is the nomenclature of the system.
 
         Raises:
             NotCalculatedError: the day lies outside the range that was agreed, or a condition was not read.
         """
         at = {k: m.value for k, m in conditions.items()}
-        value, slopes = interpolate(self.axes, target.values, at)
+        value, slopes = interpolate(self.axes, target.values, at, names)
         own = self._own(target, at)
         parts = [
             Component("frozen target", own, source="the frozen test sheet", of=target.key,
@@ -124,21 +126,25 @@ class TestSheet:
         gained = sum(interpolate(self.axes, gains, at)[0] for key, gains in target.when_read.items() if key in at)
         return math.sqrt(max(0.0, own**2 + gained))
 
-    def carried(self, target: Target, conditions: Mapping[str, Measured]) -> Carried:
+    def carried(
+        self, target: Target, conditions: Mapping[str, Measured], names: Mapping[str, Quantity] = NOMENCLATURE
+    ) -> Carried:
         """The guaranteed value of a target on the day.
 
         Raises:
             NotCalculatedError: as `value_at`.
         """
-        value, budget = self.value_at(target, conditions)
+        value, budget = self.value_at(target, conditions, names)
         return Carried(value, budget, self._explained(target, value, budget, "guarantee_by_sheet", conditions))
 
-    def expectations(self, conditions: Mapping[str, Measured]) -> tuple[Mapping[str, Expectation], Mapping[str, str]]:
+    def expectations(
+        self, conditions: Mapping[str, Measured], names: Mapping[str, Quantity] = NOMENCLATURE
+    ) -> tuple[Mapping[str, Expectation], Mapping[str, str]]:
         """All frozen expectations at the measured condition, and why others have none."""
         found, reasons = {}, {}
         for target in self.targets_for("expectation"):
             try:
-                value, budget = self.value_at(target, conditions)
+                value, budget = self.value_at(target, conditions, names)
             except NotCalculatedError as error:
                 reasons[target.key] = str(error)
                 continue

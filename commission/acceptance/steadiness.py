@@ -10,7 +10,7 @@ from importlib.resources import files
 from typing import Any, Literal
 
 from commission.acceptance.instruments import Reading
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import NOMENCLATURE, Kind, Quantity
 
 CYCLES = "whole_cycles"
 _MEDIUM = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "heat_sink_inlet_temperature",
@@ -62,12 +62,13 @@ def steadiness(
     liquid_sides: frozenset[str] = frozenset(),
     defrosts: bool = False,
     cycles: WholeCycles | None = None,
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> tuple[Steadiness, ...]:
     """All checks of one visit. Times in s; `liquid_sides` holds `source` and `sink` where the medium is a liquid.
 
     `defrosts`: whether the plant has a defrost at all, so that the time since the last one must be known. With `cycles`
     the readings are means over whole cycles, one sample for each: then enough cycles are wanted, and that they are
-    alike, instead of a time since the last start.
+    alike, instead of a time since the last start. `names` is the nomenclature of the system.
     """
     chosen = library()[limits]
     if cycles is not None:
@@ -75,7 +76,7 @@ def steadiness(
     else:
         checks = list(_times(chosen, since_start, since_defrost, defrosts))
     for reading in readings:
-        one = _spread(reading, chosen, liquid_sides)
+        one = _spread(reading, chosen, liquid_sides, names)
         if one is not None:
             checks.append(one)
     return tuple(checks)
@@ -112,11 +113,13 @@ def _times(
             yield Steadiness(key, seconds, limit, Kind.DURATION, steady, text)
 
 
-def _spread(reading: Reading, chosen: Mapping[str, Any], liquid_sides: frozenset[str]) -> Steadiness | None:
+def _spread(
+    reading: Reading, chosen: Mapping[str, Any], liquid_sides: frozenset[str], names: Mapping[str, Quantity]
+) -> Steadiness | None:
     entry = next((chosen["limits"][c] for c in _classes(reading.key, liquid_sides) if c in chosen["limits"]), None)
     if entry is None or not reading.samples:
         return None
-    label = NOMENCLATURE[reading.key].label.lower()
+    label = names[reading.key].words
     mean = math.fsum(reading.samples) / len(reading.samples)
     limit = float(entry["individual"]) * (abs(mean) if entry.get("relative") else 1.0)
     kind = NOMENCLATURE[reading.key].kind

@@ -131,7 +131,7 @@ def names() -> Mapping[str, NameType]:
     table: dict[str, NameType] = {key: NameType(kind, says, choices) for key, (kind, says, choices) in WORDS.items()}
     for prefix, says in READINGS.items():
         for quantity in NOMENCLATURE.values():
-            table[f"{prefix}.{quantity.key}"] = NameType(quantity.kind, f"{says}: {quantity.label.lower()}")
+            table[f"{prefix}.{quantity.key}"] = NameType(quantity.kind, f"{says}: {quantity.words}")
     for key, (title, kind) in FIGURE_TITLES.items():
         table[f"figure.{key}"] = NameType(kind, title)
     for prefix, found in _described():

@@ -48,7 +48,7 @@ def _design_days(facts: Facts) -> str | None:
     for word, outdoors in facts.design_days.items():
         prediction = facts.predictions.get(word)
         if prediction is not None and key in prediction.expected:
-            shown = facts.display.text(prediction.expected[key].value, NOMENCLATURE[key].kind)
+            shown = facts.display.of(key, prediction.expected[key].value)
             texts.append(f"{shown} at {facts.display.text(outdoors, Kind.TEMPERATURE)} outdoors")
     return ", ".join(texts) or None
 
@@ -61,13 +61,13 @@ def _acts_first(facts: Facts) -> str | None:
     if hot is not None:
         found.append(f"the discharge limiter at {display.text(hot, Kind.TEMPERATURE)}")
     if least is not None and system.heat_sink.medium != "air":
-        found.append(f"the flow switch at {display.text(least, Kind.VOLUME_FLOW)}")
+        found.append(f"the flow switch at {display.of('heat_sink_flow', least)}")
     return " or ".join(found) or None
 
 
 def _flow_stages(facts: Facts) -> str | None:
     stages = facts.system.heat_source.flow_stages
-    return ", ".join(f"{name} {facts.display.text(v, Kind.VOLUME_FLOW)}" for name, v in stages.items()) or None
+    return ", ".join(f"{name} {facts.display.of('heat_source_flow', v)}" for name, v in stages.items()) or None
 
 
 def _highest_discharge(facts: Facts) -> str | None:
@@ -95,21 +95,14 @@ def _condition(facts: Facts) -> str | None:
     if prediction is None:
         return None
     return ", ".join(
-        f"{_short(facts, key)} {facts.display.of(key, value)}"
+        f"{_small(facts.display.short(key))} {facts.display.of(key, value)}"
         for key, value in prediction.conditions.items()
         if NOMENCLATURE[key].kind in (Kind.TEMPERATURE, Kind.SPEED)
     )
 
 
-def _short(facts: Facts, key: str) -> str:
-    """A condition as people on site say it: the room, outdoors, or the nomenclature's own label."""
-    from commission.checklists.words import outdoor_conditions
-
-    if key in outdoor_conditions(facts.loaded, facts.system_id):
-        return "outdoors"
-    if key == "heat_source_inlet_temperature" and facts.system.duty in ("cold_storage", "comfort_cooling"):
-        return "room"
-    return NOMENCLATURE[key].label.lower()
+def _small(label: str) -> str:
+    return label[:1].lower() + label[1:]
 
 
 def _steps(facts: Facts) -> str | None:
@@ -137,12 +130,11 @@ def _guarantees(facts: Facts) -> str:
     texts = []
     for promise in facts.system.guarantee:
         at = [
-            f"{NOMENCLATURE[key].label.lower()} {facts.display.of(key, value)}"
+            f"{facts.display.words(key)} {facts.display.of(key, value)}"
             for key, value in promise.at.model_dump().items()
             if value is not None and key in NOMENCLATURE
         ]
-        label = NOMENCLATURE[promise.quantity].label
-        label = label if label[:2].isupper() else label[0].lower() + label[1:]
+        label = facts.display.words(promise.quantity)
         texts.append(f"{label} {promise.value} at {', '.join(at)}, decided by the {promise.decision} rule")
     return "; ".join(texts) or "nothing is guaranteed; the sheet shows deviations from the expected values, no verdict"
 

@@ -9,7 +9,7 @@ from commission.checklists.evaluate import evaluate, parse_literal
 from commission.checklists.language import Expression, Value
 from commission.checklists.templates import Template
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE, Display, Explained, Kind, parse
+from commission.quantities import Display, Explained, Kind, parse
 
 if TYPE_CHECKING:
     from commission.checklists.library import CheckedItem
@@ -108,7 +108,7 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
     """What the item's reading must be; None where the item asks for none."""
     if item.entry.must_read is None:
         return None
-    kind = _kind(item)
+    kind = _kind(item, facts.display)
     if kind is None:
         return Target(says) if says else None
     worked = {key: _work(bound, kind, facts) for key, bound in item.must_read.items() if key != "within"}
@@ -140,10 +140,10 @@ def _text_of(item: CheckedItem) -> str:
     return bound.text if isinstance(bound, Expression) else ""
 
 
-def _kind(item: CheckedItem) -> Kind | None:
+def _kind(item: CheckedItem, display: Display) -> Kind | None:
     """The kind of the reading: of its quantity, of an expression, or of the unit that is written."""
     if item.entry.quantity is not None:
-        return NOMENCLATURE[item.entry.quantity].kind
+        return display.kind(item.entry.quantity)
     for bound in item.must_read.values():
         if isinstance(bound, Expression) and isinstance(bound.type, Kind):
             return bound.type

@@ -122,7 +122,7 @@ def facts_of(
 
     substance = substance_of(fluid_of(loaded, system_id))
     found, missing = predictions(model, loaded, system_id, conditions)
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(system_id)
     figures = safety_figures(loaded, system_id, None if isinstance(model, Prediction) else model)
     return Facts(loaded, system_id, substance, figures, found, missing, display)
 
@@ -224,7 +224,7 @@ def _mark_of(source: str) -> str:
 
 
 def _unit(item: CheckedItem, facts: Facts) -> str | None:
-    from commission.quantities import NOMENCLATURE, pretty
+    from commission.quantities import pretty
 
     entry = item.entry
     if entry.answer != "value":
@@ -232,7 +232,7 @@ def _unit(item: CheckedItem, facts: Facts) -> str | None:
     if entry.unit is not None:
         return pretty(_unit_as_shown(entry.unit, facts.display))
     assert entry.quantity is not None
-    return pretty(facts.display.unit_and_digits(NOMENCLATURE[entry.quantity].kind)[0])
+    return pretty(facts.display.unit_and_digits(facts.display.kind(entry.quantity))[0])
 
 
 def _unit_as_shown(unit: str, display: Display) -> str:

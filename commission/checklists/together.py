@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 
 from commission.checklists.rendering import Target, show
 from commission.errors import NotCalculatedError
-from commission.quantities import Display, Kind
+from commission.quantities import Kind
 from commission.safety import fluid_of
 
 if TYPE_CHECKING:
@@ -52,7 +52,7 @@ def _at_rest(pressure: float, temperature: float, loaded: LoadedPlant, system_id
         pumped_down=False,
     )
     margin = found.budget.expanded()
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(system_id)
     low, high = found.low - margin, found.high + margin
     span = f"{show(low, Kind.PRESSURE, display)} to {show(high, Kind.PRESSURE, display)}"
     text = f"{span} at {display.text(temperature, Kind.TEMPERATURE)}; {found.text}"
@@ -61,7 +61,7 @@ def _at_rest(pressure: float, temperature: float, loaded: LoadedPlant, system_id
 
 def _as_answered(start: float, loaded: LoadedPlant, system_id: str) -> Target:
     margin = _measured(GAUGE, start, loaded, system_id).budget.expanded()
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(system_id)
     low, high = start - margin, start + margin
     shown = f"{show(low, Kind.PRESSURE, display)} to {show(high, Kind.PRESSURE, display)}"
     return Target(f"{shown}, as at the start", start, low, high, Kind.PRESSURE)

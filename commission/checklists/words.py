@@ -128,20 +128,10 @@ COOL_DAY = 291.15
 
 
 def outdoor_conditions(loaded: LoadedPlant, system_id: str) -> tuple[str, ...]:
-    """The conditions of a system that are the temperature of outdoor air.
+    """The conditions of a system that are the temperature of outdoor air."""
+    from commission.description import outdoor_sides
 
-    A side without a stated space is outdoors where heat is made from it, or thrown away: the source of a heat pump, the
-    sink of a cooling plant.
-    """
-    system = loaded.system(system_id)
-    heating = system.duty in ("space_heating", "water_heating")
-    found = []
-    for side, medium in (("heat_source", system.heat_source), ("heat_sink", system.heat_sink)):
-        space = loaded.plant.spaces.get(medium.space or "")
-        outdoors = space.outdoors if space is not None else (side == "heat_source") == heating
-        if medium.medium == "air" and outdoors:
-            found.append(f"{side}_inlet_temperature")
-    return tuple(found)
+    return tuple(f"{side}_inlet_temperature" for side in outdoor_sides(loaded.plant, loaded.system(system_id)))
 
 
 def _on_day(

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import math
 from collections.abc import Mapping
+from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -21,14 +22,22 @@ AROUND = 5.0  # K to either side of the forecast, and between the columns: what 
 _ZERO_C = 273.15
 
 
+@dataclass(frozen=True, slots=True)
+class Ahead:
+    """What is asked for a visit that is still to come: a sheet to freeze by `name`, a `page` to print, the `ranges` of
+    the day, and the day."""
+
+    name: str | None
+    page: Path | None
+    ranges: tuple[str, ...]
+    day: dt.date | None
+
+
 def before_visit(
     loaded: LoadedPlant,
     system: str,
     pairs: tuple[str, ...],
-    name: str | None,
-    page: Path | None,
-    ranges: tuple[str, ...],
-    day: dt.date | None,
+    ahead: Ahead,
 ) -> list[Path]:
     """The frozen sheet, the page, or both with the same grid; returns the paths written.
 
@@ -38,9 +47,9 @@ def before_visit(
     """
     from commission.prediction import fit
 
-    model = fit(loaded, system)
+    model, name, page, day = fit(loaded, system), ahead.name, ahead.page, ahead.day
     forecast = parse_conditions(pairs, loaded.barometric_pressure, tuple(model.condition_axes))
-    grids = grids_of(ranges, model, loaded.barometric_pressure) or columns_of(loaded, model, forecast)
+    grids = grids_of(ahead.ranges, model, loaded.barometric_pressure) or columns_of(loaded, model, forecast)
     if name is not None:
         sheet, path = freeze(loaded, model, name, grids, forecast or None, day)
         made = [path]
@@ -61,7 +70,7 @@ def columns_of(loaded: LoadedPlant, model: SystemModel, forecast: Mapping[str, f
     """
     from commission.manual.grid import highest_asked, outdoor_axis
 
-    key, _ = outdoor_axis(loaded, loaded.system(model.system_id))
+    key = outdoor_axis(loaded, loaded.system(model.system_id))
     if key not in model.condition_axes:
         allowed = f"--over with one of {', '.join(model.condition_axes)}"
         raise InputError(Problem("no condition of this system follows the weather", path="--over", allowed=allowed))

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
-from commission.quantities import NOMENCLATURE, Display
+from commission.quantities import Display
 from commission.records import guarantee_sentence
 
 if TYPE_CHECKING:
@@ -18,21 +18,21 @@ if TYPE_CHECKING:
 def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
     """The judgement for a terminal. Uncertainties are expanded, 95 %."""
     from commission.acceptance.steadiness import CYCLES
-    from commission.manual.page_display import PageDisplay
+    from commission.manual.page_display import page_display
 
-    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = page_display(loaded, judgement.system)
     name = loaded.system(judgement.system).name or judgement.system
     lines = [f"{name} ({judgement.system}), {judgement.mode}"]
     for key, measured in judgement.conditions.items():
-        lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, measured.value)}")
+        lines.append(f"  at {display.words(key)} {display.of(key, measured.value)}")
     lines += ["", *_table(judgement, display)]
     lines += _listed("cannot be", (i.text for i in judgement.impossible))
     lines += _listed("steadiness", (s.text for s in judgement.steadiness if s.steady is not True or s.key == CYCLES))
     lines += _listed("two routes", (_closure(c, display) for c in judgement.closures))
+    lines += _listed("route refused", (f"{display.label(r.key)} by {r.route}: {r.reason}" for r in judgement.refusals))
     lines += _listed(
-        "route refused", (f"{NOMENCLATURE[r.key].label} by {r.route}: {r.reason}" for r in judgement.refusals)
+        "no expectation", (f"{_label(key, display)}: {reason}" for key, reason in judgement.not_judged.items())
     )
-    lines += _listed("no expectation", (f"{_label(key)}: {reason}" for key, reason in judgement.not_judged.items()))
     lines += _listed("mind", judgement.warnings)
     lines += ["", f"verdict: {_verdict(judgement, display)}"]
     return "\n".join(lines)
@@ -40,8 +40,8 @@ def as_text(judgement: Judgement, loaded: LoadedPlant) -> str:
 
 def _closure(c: Closure, display: Display) -> str:
     """Two routes held against each other."""
-    kind = NOMENCLATURE["cooling_capacity" if c.quantity == "first law" else c.quantity].kind
-    what = "first law" if c.quantity == "first law" else NOMENCLATURE[c.quantity].label.lower()
+    kind = display.kind("cooling_capacity" if c.quantity == "first law" else c.quantity)
+    what = "first law" if c.quantity == "first law" else display.words(c.quantity)
     spread = f"{display.spread(c.budget.expanded(), kind)} {display.spread_unit(kind)}"
     size = f"{display.spread(c.difference, kind)} ± {spread}"
     word = "they do not agree, one of them is wrong" if c.significant else "they agree"
@@ -62,17 +62,17 @@ def not_compared(record: Record, loaded: LoadedPlant) -> list[str]:
     ]
 
 
-def _label(key: str) -> str:
-    return NOMENCLATURE[key].label if key in NOMENCLATURE else key
+def _label(key: str, display: Display) -> str:
+    return display.label(key) if key in display.quantities else key
 
 
 def _table(judgement: Judgement, display: Display) -> list[str]:
     rows = [("", "read", "expected", "deviation", "± (95 %)", "")]
     for d in judgement.deviations:
-        kind = NOMENCLATURE[d.key].kind
+        kind = display.kind(d.key)
         rows.append(
             (
-                NOMENCLATURE[d.key].label,
+                display.label(d.key),
                 display.of(d.key, d.reading.value),
                 display.of(d.key, d.expected.value),
                 display.spread(d.deviation, kind),

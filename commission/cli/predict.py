@@ -14,6 +14,7 @@ from commission.cli.options import check_system, json_option, parse_conditions, 
 from commission.errors import InputError, NotCalculatedError, Problem
 
 if TYPE_CHECKING:
+    from commission.cli.before import Ahead
     from commission.description import LoadedPlant
     from commission.prediction import Prediction
     from commission.quantities import Display
@@ -67,7 +68,10 @@ def command(
     instruments are good enough, whether a test could decide and what would, and the targets over the range of the day.
     With --freeze that range becomes the sheet that both sides sign.
     """
-    _check_options(system, pairs, name, page, ranges, day)
+    from commission.cli.before import Ahead, before_visit
+
+    ahead = Ahead(name, page, ranges, day.date() if day else None)
+    _check_options(system, pairs, ahead)
     from commission.description import load_plant
 
     loaded = load_plant(plant)
@@ -75,9 +79,7 @@ def command(
     if system is not None:
         check_system(system, known)
         if name is not None or page is not None:
-            from commission.cli.before import before_visit
-
-            for path in before_visit(loaded, system, pairs, name, page, ranges, day.date() if day else None):
+            for path in before_visit(loaded, system, pairs, ahead):
                 click.echo(str(path))
             return
     known_axes = _axes(loaded, system) if pairs and system is not None else ()
@@ -86,46 +88,38 @@ def command(
     if as_json:
         click.echo(json.dumps({"systems": {n: _as_data(r) for n, r in results.items()}}, indent=2, ensure_ascii=False))
         return
-    from commission.manual.page_display import PageDisplay
+    from commission.manual.page_display import page_display
 
-    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     blocks = []
     for name, result in results.items():
         title = f"{loaded.plant.systems[name].name or name} ({name}), {loaded.plant.systems[name].refrigerant}"
-        blocks.append(_as_text(title, result, display, given=bool(pairs)))
+        blocks.append(_as_text(title, result, page_display(loaded, name), given=bool(pairs)))
     click.echo("\n\n".join(blocks))
 
 
-def _check_options(
-    system: str | None,
-    pairs: tuple[str, ...],
-    name: str | None,
-    page: Path | None,
-    ranges: tuple[str, ...],
-    day: dt.datetime | None,
-) -> None:
+def _check_options(system: str | None, pairs: tuple[str, ...], ahead: Ahead) -> None:
     """Which options need which.
 
     Raises:
         InputError: one stands without what it needs.
     """
-    ahead = (("--before-visit", page), ("--freeze", name))
-    for option, given in (("--at", pairs), *ahead, ("--over", ranges)):
+    made = (("--before-visit", ahead.page), ("--freeze", ahead.name))
+    for option, given in (("--at", pairs), *made, ("--over", ahead.ranges)):
         if given and system is None:
             message = f"{option} needs --system, since each system has conditions of its own"
             raise InputError(Problem(message, path=option))
-    if page is not None and not pairs:
+    if ahead.page is not None and not pairs:
         raise InputError(
             Problem("--before-visit needs the forecast", path="--at",
                     allowed="for example --at 'heat_sink_inlet_temperature=31 °C'")
         )  # fmt: skip
-    if name is not None and page is None and not ranges:
+    if ahead.name is not None and ahead.page is None and not ahead.ranges:
         raise InputError(
             Problem("a frozen sheet needs the range of the day", path="--over",
                     allowed="for example --over 'heat_sink_inlet_temperature=15 °C..35 °C'")
         )  # fmt: skip
-    if name is None and page is None:
-        for option, stands in (("--over", bool(ranges)), ("--visit", day is not None)):
+    if ahead.name is None and ahead.page is None:
+        for option, stands in (("--over", bool(ahead.ranges)), ("--visit", ahead.day is not None)):
             if stands:
                 message = f"{option} belongs to --freeze or --before-visit; a single condition is given by --at"
                 raise InputError(Problem(message, path=option))
@@ -174,18 +168,16 @@ def _as_data(result: Prediction | str) -> dict[str, Any]:
 
 
 def _as_text(title: str, result: Prediction | str, display: Display, *, given: bool) -> str:
-    from commission.quantities import NOMENCLATURE
-
     lines = [title]
     if isinstance(result, str):
         return f"{title}\n  not calculated: because {result}"
     for key, value in result.conditions.items():
         taken = "  (rated, not given)" if given and key in result.filled else ""
-        lines.append(f"  at {NOMENCLATURE[key].label.lower()} {display.of(key, value)}{taken}")
+        lines.append(f"  at {display.words(key)} {display.of(key, value)}{taken}")
     lines.append(f"  regime: {result.regime}")
     rows = [("", "expected", "± (k = 2)")]
     for key, explained in result.expected.items():
-        quantity = NOMENCLATURE[key]
+        quantity = display.quantities[key]
         u = explained.uncertainty
         spread = (
             "not stated"
@@ -195,6 +187,6 @@ def _as_text(title: str, result: Prediction | str, display: Display, *, given: b
         rows.append((quantity.label, display.of(key, explained.value), spread.strip()))
     widths = [max(len(row[i]) for row in rows) for i in range(3)]
     lines += [f"  {a:<{widths[0]}}  {b:>{widths[1]}}  {c:>{widths[2]}}" for a, b, c in rows]
-    lines += [f"  {NOMENCLATURE[k].label}: not calculated: because {why}" for k, why in result.not_calculated.items()]
+    lines += [f"  {display.label(k)}: not calculated: because {why}" for k, why in result.not_calculated.items()]
     lines += [f"  note: {warning}" for warning in result.warnings]
     return "\n".join(lines)

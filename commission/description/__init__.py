@@ -12,6 +12,7 @@ from commission.description.model import (
     RatedPoint,
     System,
 )
+from commission.description.naming import outdoor_sides
 from commission.description.plant import LoadedPlant, load_plant
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.description.reading import ReadFile, read_yaml
@@ -46,6 +47,7 @@ __all__ = [
     "key_reference",
     "load_plant",
     "new_plant",
+    "outdoor_sides",
     "read_yaml",
     "schedule_columns",
     "validate",

@@ -16,9 +16,10 @@ from commission.description.checking import bounded, validate
 from commission.description.looked import Looked
 from commission.description.meaning import problems_of_meaning
 from commission.description.model import Plant, System
+from commission.description.naming import medium_name
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.errors import InputError, Problem, nearest
-from commission.quantities import Pressure
+from commission.quantities import Display, Pressure, Quantity, nomenclature
 
 if TYPE_CHECKING:
     from commission.properties.register import RegisterEntry
@@ -84,6 +85,21 @@ class LoadedPlant:
     def assumptions(self, identity: str) -> Mapping[str, Assumption]:
         """The assumption list of one system, own values with their place in the description."""
         return assumptions_for(self.system(identity), self.positions, ("systems", identity))
+
+    def quantities(self, identity: str) -> Mapping[str, Quantity]:
+        """The nomenclature of one system: labels and definitions call its media as people on site do."""
+        plant, system = self.plant, self.system(identity)
+        return nomenclature(medium_name(plant, system, "heat_source"), medium_name(plant, system, "heat_sink"))
+
+    def display(self, identity: str | None = None, barometric_pressure: float | None = None) -> Display:
+        """How quantities are shown to people of this plant: those of one system, where its id is given.
+
+        `barometric_pressure` (Pa) is that of the site where none is given.
+        """
+        air = self.barometric_pressure if barometric_pressure is None else barometric_pressure
+        if identity is None:
+            return Display(self.plant.plant.units, air)
+        return Display(self.plant.plant.units, air, self.quantities(identity))
 
     def absolute(self, pressure: Pressure) -> float:
         """A written pressure in Pa absolute at the barometric pressure of this site."""

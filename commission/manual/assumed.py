@@ -7,8 +7,8 @@ from dataclasses import dataclass
 
 from commission.description import Assumption
 from commission.manual.gather import SystemData, far_point
-from commission.manual.showing import label_of, spread_text
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.manual.showing import spread_text
+from commission.quantities import Display, Kind
 
 _NARROW = 0.2
 """Range of a share below which whole per cents would hide what moved."""
@@ -40,10 +40,10 @@ def _effects(changes: Mapping[str, float], values: Mapping[str, float], display:
     for key, change in changes.items():
         if key not in LEADING or change == 0:
             continue
-        kind = NOMENCLATURE[key].kind
+        kind = display.kind(key)
         text = spread_text(display, kind, change)
         scale = 10.0 if "temperature" in kind.value else abs(values.get(key, 1.0)) * 0.1
-        sized.append((abs(change) / scale if scale else 0.0, f"{label_of(key).lower()} {text}"))
+        sized.append((abs(change) / scale if scale else 0.0, f"{display.words(key)} {text}"))
     sized.sort(key=lambda item: -item[0])
     return tuple(text for size, text in sized[:4] if size > 0.002)
 

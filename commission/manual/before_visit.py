@@ -10,10 +10,10 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.sheet_pages import SHEET_KEYS, sheet_context
-from commission.manual.showing import COVERAGE, How, label_of, show_how, size_text
+from commission.manual.sheet_pages import sheet_context
+from commission.manual.showing import COVERAGE, SHEET_KEYS, How, show_how, size_text
 from commission.manual.system_pages import conditions_words
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import Display, Kind
 
 if TYPE_CHECKING:
     from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, TestSheet
@@ -82,13 +82,13 @@ def _context(
     readings = sorted(found.readings, key=lambda r: order.get(r.key, len(order)))
     return {
         "because": None,
-        "conditions": conditions_words(plant, data, data.model.predict(forecast).conditions),
-        "filled": [label_of(k).lower() for k in found.filled] if forecast is not None else [],
-        "rows": [_proof(r, data, plant.display) for r in readings],
-        "promises": [_promise(g, plant.display) for g in found.guarantees],
-        "not_read": _by_reason(found),
+        "conditions": conditions_words(data, data.model.predict(forecast).conditions),
+        "filled": [data.display.words(k) for k in found.filled] if forecast is not None else [],
+        "rows": [_proof(r, data, data.display) for r in readings],
+        "promises": [_promise(g, data.display) for g in found.guarantees],
+        "not_read": _by_reason(found, data.display),
         "warnings": [_ahead(w) for w in found.warnings],
-        "refusals": [(r.route, label_of(r.key), _ahead(r.reason)) for r in found.refusals],
+        "refusals": [(r.route, data.display.label(r.key), _ahead(r.reason)) for r in found.refusals],
         "assumptions_page": data.page("assumptions"),
         "weather": _over_weather(plant, data, forecast, on),
         "axis": data.grid.title if data.grid else "",
@@ -107,10 +107,10 @@ def _planned(how: How) -> How:
 
 
 def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
-    kind = NOMENCLATURE[r.key].kind
+    kind = display.kind(r.key)
     alone = size_text(display, kind, COVERAGE * r.of_reading)
     return ProofRow(
-        label_of(r.key),
+        display.label(r.key),
         display.text(r.expected.value, kind),
         r.instrument or "from the readings above",
         size_text(display, kind, r.detectable),
@@ -120,11 +120,11 @@ def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow
 
 
 def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
-    kind = NOMENCLATURE[g.terms.quantity].kind
+    kind = display.kind(g.terms.quantity)
     measured = g.verdict.measured
     spread = g.verdict.budget.expanded() if g.verdict.budget else None
     return {
-        "label": label_of(g.terms.quantity),
+        "label": display.label(g.terms.quantity),
         "decided": g.decided,
         "expected": display.text(measured.value, kind) if measured else None,
         "limit": _limit(g, display, kind),
@@ -146,11 +146,11 @@ def _limit(g: GuaranteeCapability, display: Display, kind: Kind) -> str:
     return " and ".join(parts)
 
 
-def _by_reason(found: Capability) -> list[tuple[str, str]]:
+def _by_reason(found: Capability, display: Display) -> list[tuple[str, str]]:
     """What nobody will read, one line for each reason: the reason, and the quantities in one list."""
     reasons: dict[str, list[str]] = {}
     for key, why in found.not_read.items():
-        reasons.setdefault(why, []).append(label_of(key).lower())
+        reasons.setdefault(why, []).append(display.words(key))
     return [(why, ", ".join(labels)) for why, labels in reasons.items()]
 
 
@@ -171,6 +171,6 @@ def _over_weather(
             found = capability(plant.loaded, data.model, at, on=on)
         except NotCalculatedError:
             continue
-        head = plant.display.text(point.temperature, Kind.TEMPERATURE, 0)
-        rows.append((head, [(label_of(g.terms.quantity), g.decided) for g in found.guarantees]))
+        head = data.display.text(point.temperature, Kind.TEMPERATURE, 0)
+        rows.append((head, [(data.display.label(g.terms.quantity), g.decided) for g in found.guarantees]))
     return rows

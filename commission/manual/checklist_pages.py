@@ -60,8 +60,8 @@ def _item(item: Item, number: str, data: SystemData, display: Display) -> ItemVi
         unit=item.unit or "",
         figures=tuple(
             FigureView(
-                label_of(key),
-                f"{display.number(e.value, kind_of(e))} {unit_of(display, kind_of(e))}".strip(),
+                label_of(key, display),
+                f"{display.number(e.value, kind_of(e, display))} {unit_of(display, kind_of(e, display))}".strip(),
                 show_how(e, display, data.assumptions),
             )
             for key, e in figures.items()
@@ -86,7 +86,7 @@ def checklist_page(plant: PlantData, data: SystemData) -> Sheet:
     context: dict[str, object] = {"because": None}
     try:
         found = stages(plant.loaded, data.id, data.model)
-        views = tuple(_stage(s, n, data, plant.display) for n, s in enumerate(found, start=1))
+        views = tuple(_stage(s, n, data, data.display) for n, s in enumerate(found, start=1))
         once = [v for v in views if v.stage.id != UPKEEP]
         context |= {
             "stages": views,

@@ -131,10 +131,10 @@ def _system(
 ) -> None:
     """The pages of one system, in the order in which they are needed."""
     progress(f"drawing {data.id}")
-    weather: tuple[Figure, ...] = charts(data, data.grid, plant.display) if data.grid else ()
-    cycle = ph_figure(data, plant.display)
+    weather: tuple[Figure, ...] = charts(data, data.grid, data.display) if data.grid else ()
+    cycle = ph_figure(data, data.display)
     found = series_of(data, archive)
-    past = history_figures(data, found, plant.display)
+    past = history_figures(data, found, data.display)
     for figure in (*weather, *([cycle] if cycle else []), *past):
         for path, svg in draw(figure, store).items():
             texts[path] = svg
@@ -151,9 +151,9 @@ def _system(
     progress(f"tabulating {data.id}")
     book.add(live_sheet(plant, data, store))
     book.add(day_sheet(plant, data))
-    book.add(records_page(plant, data, archive, found, past))
+    book.add(records_page(data, archive, found, past))
     for record in archive.of(data.id):
         book.add(record_page(plant, data, record, archive))
     for sheet in certificates(plant, data, archive):
         book.add(sheet)
-    book.add(system_pages.assumptions(plant, data))
+    book.add(system_pages.assumptions(data))

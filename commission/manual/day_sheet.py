@@ -12,10 +12,10 @@ from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
 from commission.manual.live_plan import readings_of
-from commission.manual.showing import label_of, less_than_zero, size_text, unit_of
+from commission.manual.showing import less_than_zero, size_text, unit_of
 from commission.manual.system_pages import Cell, cell, grid_cell, grid_conditions
 from commission.manual.worked_out import EVAPORATOR_OUTLET, WORKED_OUT, evaporator_outlet, how
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import Kind
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction
@@ -60,8 +60,7 @@ def instrument_words(plant: PlantData, data: SystemData, key: str, value: float 
         budget = measure(Reading(key, value, name), instruments, loaded.barometric_pressure).budget
     except NotCalculatedError:
         return name
-    kind = NOMENCLATURE[key].kind
-    return f"{name} ± {size_text(plant.display, kind, budget.expanded())}"
+    return f"{name} ± {size_text(data.display, data.display.kind(key), budget.expanded())}"
 
 
 def _used(plant: PlantData, data: SystemData, wanted: Mapping[str, float | None]) -> list[tuple[str, str, str]]:
@@ -114,12 +113,12 @@ def _both_ends(side: str) -> set[str]:
 
 
 def _read_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> tuple[SheetRow, ...]:
-    display, values = plant.display, _values(data)
+    display, values = data.display, _values(data)
     readings = asked(plant, data)[1]
     rows = [
         SheetRow(
-            label_of(key),
-            unit_of(display, NOMENCLATURE[key].kind),
+            display.label(key),
+            unit_of(display, display.kind(key)),
             "",
             instrument_words(plant, data, key, values.get(key)),
             tuple(grid_cell(p, key, display) for p in points),
@@ -133,7 +132,7 @@ def _read_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]
 
 def _outlet_row(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> SheetRow:
     """The pipe at the evaporator outlet, read with what reads the suction line."""
-    display, found = plant.display, [evaporator_outlet(p.prediction) if p.prediction else None for p in points]
+    display, found = data.display, [evaporator_outlet(p.prediction) if p.prediction else None for p in points]
     cells = tuple(Cell("–", "") if e is None else cell("", e, Kind.TEMPERATURE, display) for e in found)
     probe = instrument_words(plant, data, "suction_temperature", _values(data).get("suction_temperature"))
     return SheetRow(EVAPORATOR_OUTLET, unit_of(display, Kind.TEMPERATURE), "", probe, cells)
@@ -146,12 +145,12 @@ def _cut(key: str, predictions: Sequence[Prediction]) -> str:
 
 
 def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> tuple[SheetRow, ...]:
-    display, predictions = plant.display, [p.prediction for p in points if p.prediction]
+    display, predictions = data.display, [p.prediction for p in points if p.prediction]
     fluid = data.model.refrigerant if data.model else None
     return tuple(
         SheetRow(
-            label_of(key),
-            unit_of(display, NOMENCLATURE[key].kind),
+            display.label(key),
+            unit_of(display, display.kind(key)),
             "; ".join(t for t in (how(key, fluid, predictions, display), _cut(key, predictions)) if t),
             "",
             tuple(grid_cell(p, key, display) for p in points),
@@ -163,7 +162,7 @@ def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint
 
 def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetTable, ...]:
     """The grid in tables that fit on a page."""
-    display = plant.display
+    display = data.display
     shown = grid.shown
     n = len(shown)
     count = -(-n // _MOST_COLUMNS)
@@ -178,12 +177,12 @@ def sheet_tables(plant: PlantData, data: SystemData, grid: Grid) -> tuple[SheetT
 
 def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
     rated = data.rated.conditions if data.rated else {}
-    display = plant.display
+    display = data.display
     return [
         {
-            "label": label_of(k),
-            "unit": unit_of(display, NOMENCLATURE[k].kind),
-            "rated": stated_number(display, rated[k], NOMENCLATURE[k].kind) if k in rated else "",
+            "label": display.label(k),
+            "unit": unit_of(display, display.kind(k)),
+            "rated": stated_number(display, rated[k], display.kind(k)) if k in rated else "",
             "instrument": instrument_words(plant, data, k, rated.get(k)),
         }
         for k in asked(plant, data)[0]
@@ -194,7 +193,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
     """The sheet as a page: made to be printed, filled in with a pencil, and filed as a record afterwards."""
     from commission.acceptance.choosing import cannot_be_read
 
-    display = plant.display
+    display = data.display
     conditions, readings = asked(plant, data)
     values = _values(data)
     grid = data.grid if data.grid and any(p.prediction for p in data.grid.points) else None
@@ -213,7 +212,7 @@ def day_sheet(plant: PlantData, data: SystemData) -> Sheet:
         "tables": tables,
         "axis": grid.title if grid else "",
         "axis_unit": unit_of(display, Kind.TEMPERATURE),
-        "fixed": grid_conditions(plant, data, grid) if grid else "",
+        "fixed": grid_conditions(data, grid) if grid else "",
         "instruments": _used(plant, data, {k: values.get(k) for k in (*conditions, *readings)}),
         "saturation": data.page("saturation-table"),
         "live_sheet": data.page("live-sheet"),

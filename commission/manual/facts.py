@@ -12,7 +12,7 @@ from pydantic.fields import FieldInfo
 from commission.description import LoadedPlant
 from commission.description.shapes import meaning_of
 from commission.manual.page_display import three_figures
-from commission.quantities import NOMENCLATURE, Display, Kind, Pressure, pretty
+from commission.quantities import FLOWS, Display, Kind, Pressure, pretty
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,12 +73,12 @@ _ELSEWHERE = {"like", "without", "name", "rated_points", "guarantee", "documents
 _SPACES = {"evaporator", "condensing_unit", "pipework", "space"}
 
 
-def words_of(key: str) -> str:
+def words_of(key: str, display: Display) -> str:
     """A key as a label: its own label, that of the nomenclature, or the key in words."""
     if key in _LABELS:
         return _LABELS[key]
-    if key in NOMENCLATURE:
-        return NOMENCLATURE[key].label
+    if key in display.quantities:
+        return display.label(key)
     text = key.replace("_", " ")
     return text[:1].upper() + text[1:]
 
@@ -105,7 +105,7 @@ def stated_number(display: Display, value: float, kind: Kind) -> str:
     unit, digits = display.unit_and_digits(kind)
     if kind is Kind.TEMPERATURE:
         return display.text(value, kind)
-    if kind is Kind.VOLUME_FLOW and abs(three_figures(shown) - shown) <= 0.001 * abs(shown):
+    if kind in FLOWS and abs(three_figures(shown) - shown) <= 0.001 * abs(shown):
         value *= three_figures(shown) / shown if shown else 1.0
         shown = display.convert(value, kind)
     if abs(shown) >= 100.0 and round(shown, 6).is_integer():
@@ -128,7 +128,8 @@ class Walker:
             if name not in part.model_fields_set:
                 continue
             key = info.alias or name
-            label = f"{before}: {words_of(key).lower()}" if before else words_of(key)
+            words = words_of(key, self.display)
+            label = f"{before}: {words[:1].lower()}{words[1:]}" if before else words
             yield from self.value(getattr(part, name), info, (*path, key), label)
 
     def value(self, value: object, info: FieldInfo, path: tuple[str | int, ...], label: str) -> Iterator[Fact]:
@@ -146,11 +147,15 @@ class Walker:
             for name, one in value.items():
                 yield from self.value(one, info, (*path, name), f"{label} {name}")
         else:
-            yield Fact(label, self.text(value, info, str(path[-1])), str(self.loaded.where((*self.base, *path))))
+            shown = self.text(value, info, str(path[-1]), side=str(path[0]))
+            yield Fact(label, shown, str(self.loaded.where((*self.base, *path))))
 
-    def text(self, value: object, info: FieldInfo, key: str) -> str:
-        """A value in words."""
+    def text(self, value: object, info: FieldInfo, key: str, side: str = "") -> str:
+        """A value in words; `side` is the part of the system in which it stands."""
         kind = kind_of_field(info)
+        if kind is Kind.VOLUME_FLOW:  # of air, or of a liquid: the medium of its side says which
+            named = next((k for k in (key, f"{side}_flow") if k in self.display.quantities), None)
+            kind = self.display.kind(named) if named else kind
         if isinstance(value, Pressure):
             return self.display.text(self.loaded.absolute(value), Kind.PRESSURE)
         if isinstance(value, bool):
@@ -184,7 +189,16 @@ def system_facts(loaded: LoadedPlant, identity: str, display: Display) -> tuple[
         if isinstance(value, BaseModel) and name != "spaces":
             facts = tuple(f for f in walker.facts(value, (name,)) if not f.label.startswith("Rated point"))
             if facts:
-                groups.append(FactGroup(words_of(name), facts))
+                groups.append(FactGroup(_title(name, display), facts))
         else:
-            first.extend(walker.value(value, info, (name,), words_of(name)))
+            first.extend(walker.value(value, info, (name,), words_of(name, display)))
     return (FactGroup("Duty and refrigerant", tuple(first)), *groups)
+
+
+def _title(part: str, display: Display) -> str:
+    """The heading of a part; a side with the name of its medium."""
+    words = words_of(part, display)
+    if f"{part}_flow" not in display.quantities:
+        return words
+    medium = display.medium(part)
+    return f"{words}: {medium[:1].lower()}{medium[1:]}"

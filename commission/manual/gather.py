@@ -10,7 +10,7 @@ from commission.description import Assumption, LoadedPlant, System
 from commission.errors import CommissionError, NotCalculatedError
 from commission.manual.book import slugs
 from commission.manual.grid import Grid, make_grid
-from commission.manual.page_display import PageDisplay
+from commission.manual.page_display import page_display
 from commission.manual.remembering import remembering
 from commission.quantities import Display
 
@@ -21,7 +21,8 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, slots=True)
 class SystemData:
-    """Everything the pages of one system show. `because` is the reason where the system cannot be calculated."""
+    """Everything the pages of one system show. `because` is the reason where the system cannot be calculated; `display`
+    shows the quantities of this system, with its media under their names."""
 
     id: str
     slug: str
@@ -32,6 +33,7 @@ class SystemData:
     assumptions: Mapping[str, Assumption]
     grid: Grid | None
     effects: Mapping[str, Mapping[str, float]]
+    display: Display
 
     @property
     def name(self) -> str:
@@ -70,10 +72,9 @@ class PlantData:
 
 def gather(loaded: LoadedPlant, progress: Callable[[str], None]) -> PlantData:
     """Calculates every system once."""
-    display = PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure)
     names = slugs(tuple(loaded.plant.systems))
     systems = tuple(_system(loaded, identity, slug, progress) for identity, slug in names.items())
-    return PlantData(loaded, display, systems, _sheets(loaded))
+    return PlantData(loaded, page_display(loaded), systems, _sheets(loaded))
 
 
 def gather_one(loaded: LoadedPlant, model: SystemModel) -> PlantData:
@@ -86,19 +87,20 @@ def gather_one(loaded: LoadedPlant, model: SystemModel) -> PlantData:
     slug = slugs(tuple(loaded.plant.systems))[identity]
     model = remembering(model)
     data = _calculated(loaded, identity, slug, model, model.predict())
-    return PlantData(loaded, PageDisplay(loaded.plant.plant.units, loaded.barometric_pressure), (data,))
+    return PlantData(loaded, page_display(loaded), (data,))
 
 
 def _system(loaded: LoadedPlant, identity: str, slug: str, progress: Callable[[str], None]) -> SystemData:
     from commission.prediction import fit
 
     progress(f"calculating {identity}")
+    shown = page_display(loaded, identity)
     try:
         model = remembering(fit(loaded, identity))
         rated = model.predict()
     except CommissionError as error:
         assumed = loaded.assumptions(identity)
-        return SystemData(identity, slug, loaded.system(identity), None, _reason(error), None, assumed, None, {})
+        return SystemData(identity, slug, loaded.system(identity), None, _reason(error), None, assumed, None, {}, shown)
     return _calculated(loaded, identity, slug, model, rated)
 
 
@@ -109,7 +111,18 @@ def _calculated(loaded: LoadedPlant, identity: str, slug: str, model: SystemMode
         effects = model.assumption_effects(_far_condition(grid, rated))
     except NotCalculatedError:
         effects = {}
-    return SystemData(identity, slug, system, model, None, rated, _in_use(system, model), grid, effects)
+    return SystemData(
+        identity,
+        slug,
+        system,
+        model,
+        None,
+        rated,
+        _in_use(system, model),
+        grid,
+        effects,
+        page_display(loaded, identity),
+    )
 
 
 def _in_use(system: System, model: SystemModel) -> Mapping[str, Assumption]:

@@ -8,9 +8,8 @@ from dataclasses import dataclass
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from commission.description import LoadedPlant, System
+from commission.description import LoadedPlant, System, outdoor_sides
 from commission.errors import NotCalculatedError
-from commission.quantities import NOMENCLATURE
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction, SystemModel
@@ -62,15 +61,12 @@ class Grid:
         return found
 
 
-def outdoor_axis(loaded: LoadedPlant, system: System) -> tuple[str, str]:
-    """The condition that follows the weather, and its name: the side that is outdoors, else the duty's outdoor side."""
-    for side, medium in (("heat_sink", system.heat_sink), ("heat_source", system.heat_source)):
-        space = loaded.plant.spaces.get(medium.space) if medium.space else None
-        if space is not None and space.outdoors:
-            return f"{side}_inlet_temperature", "Outdoor air"
+def outdoor_axis(loaded: LoadedPlant, system: System) -> str:
+    """The condition that follows the weather: the side that is outdoors, else the duty's outdoor side."""
     heating = system.duty in ("space_heating", "water_heating")
-    key = "heat_source_inlet_temperature" if heating else "heat_sink_inlet_temperature"
-    return key, NOMENCLATURE[key].label.removesuffix(" temperature")  # headings add that word to either name
+    outdoors = outdoor_sides(loaded.plant, system)
+    side = outdoors[-1] if outdoors else "heat_source" if heating else "heat_sink"
+    return f"{side}_inlet_temperature"
 
 
 def highest_asked(model: SystemModel, key: str) -> float:
@@ -111,7 +107,7 @@ def _walk(model: SystemModel, key: str, values: tuple[float, ...]) -> tuple[Grid
 
 def make_grid(loaded: LoadedPlant, system: System, model: SystemModel) -> Grid | None:
     """The grid of one system, or None where the model has no such condition."""
-    key, title = outdoor_axis(loaded, system)
+    key = outdoor_axis(loaded, system)
     if key not in model.condition_axes:
         return None
     coarse = temperatures(loaded, key, model)
@@ -119,4 +115,5 @@ def make_grid(loaded: LoadedPlant, system: System, model: SystemModel) -> Grid |
     line = _walk(model, key, tuple(sorted({*coarse, *middles})))
     fixed = model.along(key)
     led = tuple(k for k in model.rated_condition if k != key and k not in fixed)
+    title = loaded.display(model.system_id).short(key)
     return Grid(key, title, fixed, led, tuple(p for p in line if p.temperature in coarse), line)

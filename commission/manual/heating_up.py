@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass, replace
 
+from commission.description import outdoor_sides
 from commission.errors import NotCalculatedError
 from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
@@ -43,13 +44,13 @@ def heating_ups(plant: PlantData, data: SystemData) -> HeatingUps | None:
     if store.cold_water is None or store.set_point is None:
         missing = "store.cold_water" if store.cold_water is None else "store.set_point"
         return HeatingUps("", (), f"the description does not state {missing}")
-    display = plant.display
+    display = data.display
     low, high = (display.text(t, Kind.TEMPERATURE) for t in (store.cold_water, store.set_point))
     words = (
         f"The whole store of {stated_number(display, store.volume, Kind.VOLUME)} from {low} to {high}, with "
         "nothing drawn. Defrosts and the first minutes of running are not counted: a real heat-up takes longer."
     )
-    ways = tuple(_at(plant, data, store.cold_water, t, title) for t, title in _airs(plant, data))
+    ways = tuple(_at(data, store.cold_water, t, title) for t, title in _airs(plant, data))
     return HeatingUps(words, ways)
 
 
@@ -58,15 +59,15 @@ def _airs(plant: PlantData, data: SystemData) -> tuple[tuple[float | None, str],
     rated = data.model.rated_condition.get(_AIR) if data.model else None
     if rated is None:
         return ((None, "At the rated condition"),)
-    airs: list[tuple[float | None, str]] = [(rated, f"At {plant.display.text(rated, Kind.TEMPERATURE)}, as rated")]
+    airs: list[tuple[float | None, str]] = [(rated, f"At {data.display.text(rated, Kind.TEMPERATURE)}, as rated")]
     coldest = plant.loaded.plant.plant.climate.winter_dry_bulb
-    outdoors = plant.loaded.plant.spaces.get(data.system.heat_source.space or "")
-    if coldest is not None and coldest < rated and outdoors is not None and outdoors.outdoors:
-        airs.append((coldest, f"At {plant.display.text(coldest, Kind.TEMPERATURE)}, the coldest design day"))
+    outdoors = "heat_source" in outdoor_sides(plant.loaded.plant, data.system)
+    if coldest is not None and coldest < rated and outdoors:
+        airs.append((coldest, f"At {data.display.text(coldest, Kind.TEMPERATURE)}, the coldest design day"))
     return tuple(airs)
 
 
-def _at(plant: PlantData, data: SystemData, start: float, air: float | None, title: str) -> HeatingUp:
+def _at(data: SystemData, start: float, air: float | None, title: str) -> HeatingUp:
     from commission.prediction import heat_up
 
     assert data.model is not None
@@ -78,7 +79,7 @@ def _at(plant: PlantData, data: SystemData, start: float, air: float | None, tit
     if found.time_with_element is not None and found.energy_with_element is not None:
         values += [(found.time_with_element, "with the element"), (found.energy_with_element, "with the element")]
     place = "" if air is None else f"-{display_key(air)}"
-    rows = tuple(_row(e, way, place, data, plant.display) for e, way in values)
+    rows = tuple(_row(e, way, place, data, data.display) for e, way in values)
     element = re.sub(r"(?<!\w)-(?=\d)", "−", found.element_reason) if found.element_reason else None
     return HeatingUp(title, rows, None, element, found.warnings)
 

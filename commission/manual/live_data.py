@@ -16,8 +16,8 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_bands import TWO_SIDED, Bands, make_bands
 from commission.manual.live_plan import APPROACHES, DERIVED, LINE_LOSSES, LivePlan
 from commission.manual.live_series import Asked, LiveTable, along_the_way, grid_axes, make_table
-from commission.manual.showing import label_of, unit_of
-from commission.quantities import NOMENCLATURE, Display, Kind, Reference
+from commission.manual.showing import unit_of
+from commission.quantities import FLOWS, Display, Kind, Reference
 from commission.quantities.units import find_unit
 
 if TYPE_CHECKING:
@@ -81,7 +81,7 @@ def live_data(
     """All that the script needs, as plain data; `expected` is that of `expected_data`."""
     from commission.records.read import READING_KEYS
 
-    instruments = plant.loaded.plant.instruments
+    instruments, shown = plant.loaded.plant.instruments, data.display
     judged = None if expected is None else {k for bands in expected["bands"] for k in bands}
     air = {k for k, side in APPROACHES.items() if getattr(data.system, side).medium == "air"}
     derived = [k for k in DERIVED if k not in plan.readings and (k not in air if judged is None else k in judged)]
@@ -93,14 +93,14 @@ def live_data(
         "digest": plant.loaded.digest[:12],
         "barometer": plant.loaded.barometric_pressure,
         "twoSided": TWO_SIDED,
-        "quantities": {k: {"label": label_of(k), "kind": NOMENCLATURE[k].kind.value} for k in dict.fromkeys(keys)},
-        "kinds": {k.value: kind_data(plant.display, k) for k in {NOMENCLATURE[k].kind for k in keys}},
+        "quantities": {k: {"label": shown.label(k), "kind": shown.kind(k).value} for k in dict.fromkeys(keys)},
+        "kinds": {k.value: kind_data(shown, k) for k in {shown.kind(k) for k in keys}},
         "conditions": list(plan.conditions),
         "readings": list(plan.readings),
         "underConditions": [k for k in plan.readings if k not in READING_KEYS],
         "derived": derived,
         "instruments": {k: v for k, v in plan.instruments.items() if v},
-        "choices": _choices(plant, {NOMENCLATURE[k].kind for k in keys}),
+        "choices": _choices(plant, {shown.kind(k) for k in keys}),
         "until": {n: i.calibrated_until.isoformat() for n, i in instruments.items() if i.calibrated_until},
         "sheets": sheets,
         "steady": _steady(data),
@@ -114,7 +114,12 @@ def live_data(
 def _choices(plant: PlantData, kinds: set[Kind]) -> dict[str, list[str]]:
     """The instruments of the plant for each kind of quantity."""
     instruments = plant.loaded.plant.instruments
-    return {k.value: [n for n, i in instruments.items() if i.resolved.kind is k] for k in sorted(kinds)}
+    return {k.value: [n for n, i in instruments.items() if _shows(i.resolved.kind, k)] for k in sorted(kinds)}
+
+
+def _shows(measured: Kind, kind: Kind) -> bool:
+    """Whether an instrument of one kind can show quantities of another: a flow meter those of a liquid too."""
+    return measured is kind or (measured in FLOWS and kind in FLOWS)
 
 
 def as_script(data: Mapping[str, Any]) -> Markup:
@@ -137,7 +142,7 @@ def kind_data(display: Display, kind: Kind) -> dict[str, Any]:
         "offset": unit.offset if unit else 0.0,
         "gauge": bool(unit and unit.reference is Reference.GAUGE),
         "digits": digits,
-        "figures": kind is Kind.VOLUME_FLOW,
+        "figures": kind in FLOWS,
     }
 
 

@@ -35,12 +35,8 @@ LINE_LOSSES = {
 """Expected values that the difference between a gauge and its exchanger is made of."""
 HOW = {
     "evaporating_temperature": "saturation at the low-side gauge, as it is in the evaporator",
-    "evaporator_temperature_difference": "source inlet minus evaporating",
     "compressor_superheat": "suction line minus saturation at the low-side gauge",
     "condensing_temperature": "saturation at the high-side gauge, as it is in the condenser",
-    "condenser_temperature_difference": "condensing minus sink inlet",
-    "evaporator_approach": "source outlet minus evaporating",
-    "condenser_approach": "condensing minus sink outlet",
     "subcooling": "saturation at the high-side gauge minus liquid line",
     "heat_source_temperature_change": "inlet minus outlet",
     "heat_sink_temperature_change": "outlet minus inlet",
@@ -48,7 +44,7 @@ HOW = {
     "cooling_capacity": "flow and temperatures of the liquid",
     "heating_capacity": "flow and temperatures of the liquid",
     "cooling_cop": "capacity over power input",
-    "heating_cop": "heat to the sink over power input",
+    "heating_cop": "capacity over power input",
 }
 _FLOW_RANGE = (0.85, 1.15)
 _HUMIDITY_RANGE = 0.15

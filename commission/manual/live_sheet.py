@@ -14,7 +14,7 @@ from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_data import as_script, calculate, expected_data, live_data
 from commission.manual.live_plan import HOW, LivePlan, bare_plan, make_plan
-from commission.manual.showing import label_of, unit_of
+from commission.manual.showing import unit_of
 from commission.manual.store import Store, kept, package_digest
 from commission.quantities import NOMENCLATURE
 
@@ -63,10 +63,10 @@ def live_sheet(plant: PlantData, data: SystemData, store: Store | None = None) -
         "conditions": [_row(plant, data, plan, k) for k in plan.conditions],
         "readings": [_row(plant, data, plan, k) for k in plan.readings],
         "derived": [_row(plant, data, plan, k) for k in content["derived"]],
-        "held": [(label_of(k), plant.display.of(k, v)) for k, v in plan.held.items()],
+        "held": [(data.display.label(k), data.display.of(k, v)) for k, v in plan.held.items()],
         "when_filed": _when_filed(data, plan, content["derived"]),
         "ranges": [
-            (label_of(k), plant.display.of(k, low), plant.display.of(k, high))
+            (data.display.label(k), data.display.of(k, low), data.display.of(k, high))
             for k, (low, _, high) in {**plan.axes, **plan.extras}.items()
         ],
         "stages": _stages(plant, data),
@@ -88,33 +88,26 @@ def _answer(plant: PlantData, model: SystemModel, plan: LivePlan) -> bytes:
 
 
 def _row(plant: PlantData, data: SystemData, plan: LivePlan, key: str) -> Row:
-    kind = NOMENCLATURE[key].kind
-    fit = any(i.resolved.kind is kind for i in plant.loaded.plant.instruments.values())
+    kind = data.display.kind(key)
+    fit = any(i.resolved.kind is NOMENCLATURE[key].kind for i in plant.loaded.plant.instruments.values())
     rated = data.rated.conditions.get(key) if data.rated else None
     return Row(
         key,
-        label_of(key),
-        unit_of(plant.display, kind),
+        data.display.label(key),
+        unit_of(data.display, kind),
         HOW.get(key, ""),
         fit and key in (*plan.conditions, *plan.readings),
         plan.instruments.get(key) or "",
-        "" if rated is None else stated_number(plant.display, rated, kind),
+        "" if rated is None else stated_number(data.display, rated, kind),
         key in plan.conditions and not key.endswith("_temperature"),
     )
-
-
-def in_sentence(label: str) -> str:
-    """A label in the middle of a sentence: a small first letter, but for an abbreviation."""
-    return label if label[1:2].isupper() else label[:1].lower() + label[1:]
 
 
 def _when_filed(data: SystemData, plan: LivePlan, derived: list[str]) -> list[str]:
     """What is judged only when the record is filed, since the page cannot work it out."""
     expected = data.rated.expected if data.rated else {}
     capacities = ("cooling_capacity", "heating_capacity", "cooling_cop", "heating_cop")
-    return [
-        in_sentence(label_of(k)) for k in capacities if k in expected and k not in derived and k not in plan.readings
-    ]
+    return [data.display.words(k) for k in capacities if k in expected and k not in derived and k not in plan.readings]
 
 
 def _stages(plant: PlantData, data: SystemData) -> list[tuple[str, str, bool]]:

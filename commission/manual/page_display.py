@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import math
 
-from commission.quantities import Display, Kind
+from commission.description import LoadedPlant
+from commission.quantities import FLOWS, Display, Kind
 
 
 def three_figures(shown: float) -> float:
@@ -22,8 +23,16 @@ class PageDisplay(Display):
 
     def number(self, value: float, kind: Kind, digits: int | None = None) -> str:
         """As `Display.number`; a volume flow from 1000 on has three significant figures."""
-        if digits is None and kind is Kind.VOLUME_FLOW:
+        if digits is None and kind in FLOWS:
             shown = self.convert(value, kind)
             if abs(shown) >= 1000.0:
                 return f"{three_figures(shown):.0f}".replace("-", "−")
         return super().number(value, kind, digits)
+
+
+def page_display(
+    loaded: LoadedPlant, identity: str | None = None, barometric_pressure: float | None = None
+) -> PageDisplay:
+    """How the manual shows quantities of a plant, or of one of its systems: see `LoadedPlant.display`."""
+    plain = loaded.display(identity, barometric_pressure)
+    return PageDisplay(plain.system, plain.barometric_pressure, plain.quantities)

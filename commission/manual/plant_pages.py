@@ -196,7 +196,7 @@ def _used_for(plant: PlantData, name: str) -> list[str]:
     for data in plant.systems:
         for key, instrument in data.system.measured_with.items():
             if instrument == name:
-                label = NOMENCLATURE[key].label.lower() if key in NOMENCLATURE else key
+                label = data.display.words(key) if key in NOMENCLATURE else key
                 found.append(f"{label} ({data.name})" if len(plant.systems) > 1 else label)
     return found
 

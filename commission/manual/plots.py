@@ -20,9 +20,9 @@ from commission.manual.figures import (
 )
 from commission.manual.gather import SystemData
 from commission.manual.grid import Grid
-from commission.manual.showing import COVERAGE, label_of, unit_of
+from commission.manual.showing import COVERAGE, unit_of
 from commission.manual.store import Store, kept
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import Display, Kind
 
 if TYPE_CHECKING:
     from commission.machine import StatePoint
@@ -74,7 +74,7 @@ def charts(data: SystemData, grid: Grid, display: Display) -> tuple[Figure, ...]
             lines=lines,
             rated_x=None if rated is None else display.convert(rated, Kind.TEMPERATURE),
         )
-        names = " and ".join(label_of(k).lower() for k, w in members if any(w == line.name for line in lines))
+        names = " and ".join(display.words(k) for k, w in members if any(w == line.name for line in lines))
         alt = f"Chart: {names} in {unit} over {grid.title.lower()} temperature. The table below holds the numbers."
         found.append(Figure(f"figures/{data.slug}-{name}", alt, "", chart))
     return tuple(found)
@@ -175,9 +175,9 @@ def history_figures(data: SystemData, found: Sequence[Series], display: Display)
     for one in found:
         if one.quantity not in _FOLLOWED or len(one.points) < 2:
             continue
-        kind = NOMENCLATURE[one.quantity].kind
+        kind = display.kind(one.quantity)
         unit = display.spread_unit(kind)
-        label = label_of(one.quantity)
+        label = display.label(one.quantity)
         chart = HistoryChart(
             title=f"{data.name}: {label.lower()}, reading minus expected",
             y_label=f"{label}: reading minus expected" + (f", {unit}" if unit else ""),

@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
+from commission.description import LoadedPlant
 from commission.manual.book import OwnerFile, Sheet, slugs
 from commission.manual.documents import ACTIVE
 from commission.manual.gather import PlantData, SystemData
@@ -14,7 +15,7 @@ from commission.manual.plant_pages import OpenLine
 from commission.manual.plots import Figure
 from commission.manual.showing import label_of
 from commission.manual.states import Visit
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import Display, Kind
 
 if TYPE_CHECKING:
     from commission.records import FiledRecord, OpenItem, RecordsFolder, Series, Unanswered
@@ -119,9 +120,7 @@ def series_of(data: SystemData, archive: Archive) -> tuple[Series, ...]:
     return series(archive.folder.records, data.id)
 
 
-def records_page(
-    plant: PlantData, data: SystemData, archive: Archive, found: tuple[Series, ...], figures: tuple[Figure, ...]
-) -> Sheet:
+def records_page(data: SystemData, archive: Archive, found: tuple[Series, ...], figures: tuple[Figure, ...]) -> Sheet:
     """The visits to one system, and how each reading stood against the expectation at its own condition."""
     rows = [
         {
@@ -137,7 +136,7 @@ def records_page(
     ]
     context = {
         "rows": list(reversed(rows)),
-        "history": _history(plant.display, found),
+        "history": _history(data.display, found),
         "charts": figures,
         "damaged": [str(p) for p in archive.folder.damaged],
         "drafts": archive.folder.drafts,
@@ -145,21 +144,21 @@ def records_page(
         "unanswered_count": archive.open_answers(data.id),
         "day_sheet": data.page("day-sheet"),
         "checklist": data.page("checklist"),
-        **_drift(plant, data, found),
+        **_drift(data, found),
     }
     return Sheet(data.page("records"), "Records", data.group, "records.html", context, data.kicker)
 
 
-def _drift(plant: PlantData, data: SystemData, found: tuple[Series, ...]) -> dict[str, Any]:
+def _drift(data: SystemData, found: tuple[Series, ...]) -> dict[str, Any]:
     """What has drifted since the baseline, and what kind of cause fits."""
     from commission.records import families, find_drifts
 
-    drifted = find_drifts(found, plant.display)
+    drifted = find_drifts(found, data.display)
     valve = data.system.expansion is not None and data.system.expansion.device.endswith("valve")
     kinds = families(found, valve=valve, receiver=data.system.receiver is not None) if drifted else ()
     return {
         "drifts": drifted,
-        "families": [(f.name, f.look_at, [label_of(k).lower() for k in f.agree]) for f in kinds],
+        "families": [(f.name, f.look_at, [data.display.words(k) for k in f.agree]) for f in kinds],
     }
 
 
@@ -177,7 +176,7 @@ def _history(display: Display, found: tuple[Series, ...]) -> dict[str, Any] | No
             for _, record in visits_at
             for p in [by_record.get(record)]
         ]
-        rows.append((label_of(s.quantity), cells))
+        rows.append((display.label(s.quantity), cells))
     return {"heads": [moment.date().isoformat() for moment, _ in visits_at], "rows": rows}
 
 
@@ -187,18 +186,18 @@ def signed(display: Display, kind: Kind, value: float) -> str:
 
 
 def _plus_minus(display: Display, key: str, deviation: float, expanded: float) -> str:
-    kind = NOMENCLATURE[key].kind
+    kind = display.kind(key)
     return f"{signed(display, kind, deviation)} ± {display.spread(expanded, kind)} {display.spread_unit(kind)}".strip()
 
 
-def _head(item: OpenItem) -> str:
+def _head(item: OpenItem, loaded: LoadedPlant) -> str:
     """An item in a few words: a long one by its verdict, such as `Cooling capacity: undecided`, or by its line."""
     if len(item.what) <= _LONGEST_HEAD:
         return item.what
     verdict = re.split("[,;]", item.what)[0]
     if item.raised_by == "guarantee" and len(verdict) <= _LONGEST_HEAD:
         return verdict
-    return label_of(item.line or "as found")
+    return label_of(item.line or "as found", loaded.display(item.system))
 
 
 def open_lines(plant: PlantData, archive: Archive) -> tuple[OpenLine, ...]:
@@ -208,7 +207,7 @@ def open_lines(plant: PlantData, archive: Archive) -> tuple[OpenLine, ...]:
     return tuple(
         OpenLine(
             i.number,
-            _head(i),
+            _head(i, plant.loaded),
             names.get(i.system, i.system),
             i.who,
             i.due.isoformat() if i.due else None,
@@ -222,7 +221,7 @@ def open_items_page(plant: PlantData, archive: Archive) -> Sheet:
     names = {d.id: d.name for d in plant.systems}
 
     def view(i: OpenItem) -> dict[str, Any]:
-        head = _head(i)
+        head = _head(i, plant.loaded)
         return {
             "item": i,
             "head": head,

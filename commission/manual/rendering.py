@@ -26,9 +26,7 @@ def environment(templates: Path, display: Display) -> jinja2.Environment:
     )
     harden(env)
     env.globals["display"] = display
-    env.filters["by_kind"] = display.text
     env.filters["sourced"] = sourced
-    env.filters["by_key"] = lambda value, key: display.of(key, value)
     return env
 
 

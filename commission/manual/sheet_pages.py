@@ -9,22 +9,14 @@ from typing import TYPE_CHECKING, Any
 from commission.errors import CommissionError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.page_display import PageDisplay
-from commission.manual.showing import COVERAGE, band_text, label_of, unit_of
+from commission.manual.page_display import page_display
+from commission.manual.showing import COVERAGE, SHEET_KEYS, band_text, unit_of
 from commission.manual.system_pages import conditions_words
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import Display, Kind
 
 if TYPE_CHECKING:
     from commission.acceptance import Target, Terms, TestSheet
     from commission.description import System
-
-SHEET_KEYS = (
-    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
-    "evaporator_temperature_difference", "compressor_superheat", "condenser_temperature_difference",
-    "condenser_approach", "evaporator_approach", "subcooling", "heat_source_outlet_temperature",
-    "heat_source_outlet_wet_bulb", "heat_sink_outlet_temperature", "power_input", "current",
-)  # fmt: skip
-"""Expectations that are printed on a sheet, where they can be read; a frozen sheet holds all of them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,20 +46,18 @@ def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[She
 
     asked = [k for k in SHEET_KEYS if cannot_be_read(k, system) is None]
     *outer, last = sheet.axes
-    kind = NOMENCLATURE[last.key].kind
+    kind = display.kind(last.key)
     heads = tuple(display.text(v, kind, 0) for v in last.values)
     grids = []
     for n, values in enumerate(product(*(a.values for a in outer))):
-        fixed = ", ".join(
-            f"{label_of(a.key).lower()} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True)
-        )
+        fixed = ", ".join(f"{display.words(a.key)} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True))
         place = slice(n * len(last.values), (n + 1) * len(last.values))
         expected = [t for t in sheet.targets_for("expectation") if t.key in asked]
         expected.sort(key=lambda t: SHEET_KEYS.index(t.key))
         grids.append(
             SheetGrid(
                 fixed,
-                label_of(last.key),
+                display.label(last.key),
                 heads,
                 tuple(_promised_line(t, place, display) for t in sheet.targets_for("guarantee")),
                 tuple(_expected_line(t, place, display) for t in expected),
@@ -77,13 +67,13 @@ def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[She
 
 
 def _head(target: Target, display: Display) -> str:
-    kind = NOMENCLATURE[target.key].kind
+    kind = display.kind(target.key)
     unit = unit_of(display, kind)
-    return f"{label_of(target.key)}, {unit}" if unit else label_of(target.key)
+    return f"{display.label(target.key)}, {unit}" if unit else display.label(target.key)
 
 
 def _expected_line(target: Target, place: slice, display: Display) -> SheetLine:
-    kind = NOMENCLATURE[target.key].kind
+    kind = display.kind(target.key)
     cells = tuple(
         (display.number(v, kind), band_text(display, kind, v, u))
         for v, u in zip(target.values[place], target.uncertainties[place], strict=True)
@@ -92,7 +82,7 @@ def _expected_line(target: Target, place: slice, display: Display) -> SheetLine:
 
 
 def _promised_line(target: Target, place: slice, display: Display) -> SheetLine:
-    kind = NOMENCLATURE[target.key].kind
+    kind = display.kind(target.key)
     cells = []
     for value in target.values[place]:
         low, high = target.terms.limits(value) if target.terms else (None, None)
@@ -107,8 +97,8 @@ def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
     for t in sheet.targets_for("guarantee"):
         if t.terms is None:
             continue
-        kind = NOMENCLATURE[t.key].kind
-        at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in t.terms.at.items())
+        kind = display.kind(t.key)
+        at = ", ".join(f"{display.words(k)} {display.of(k, v)}" for k, v in t.terms.at.items())
         shares = [
             f"{display.text(v, Kind.RATIO, 1)} {w}"
             for v, w in ((t.terms.below, "below"), (t.terms.above, "above"))
@@ -122,7 +112,7 @@ def _terms(sheet: TestSheet, display: Display) -> list[dict[str, Any]]:
             ("Measured by", t.terms.route or "the best route that can be used"),
             ("Clause", t.terms.source or "not stated"),
         ]
-        found.append({"label": label_of(t.key), "facts": [{"label": a, "text": b} for a, b in facts]})
+        found.append({"label": display.label(t.key), "facts": [{"label": a, "text": b} for a, b in facts]})
     return found
 
 
@@ -138,7 +128,7 @@ def _agreed(terms: Terms, display: Display) -> str:
 
 def sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: str | None) -> dict[str, Any]:
     """What the template shows of a sheet; `frozen` is its name where it is frozen."""
-    display = PageDisplay(plant.display.system, sheet.barometric_pressure)
+    display = page_display(plant.loaded, data.id, sheet.barometric_pressure)
     return {
         "because": None,
         "frozen": frozen,
@@ -147,7 +137,7 @@ def sheet_context(plant: PlantData, data: SystemData, sheet: TestSheet, frozen: 
         "digest": sheet.digest,
         "description": sheet.description_digest,
         "versions": list(sheet.versions.items()),
-        "held": conditions_words(plant, data, sheet.conditions),
+        "held": conditions_words(data, sheet.conditions),
         "terms": _terms(sheet, display),
         "grids": sheet_grids(sheet, display, data.system),
         "instruments": [(name, list(words.items())) for name, words in sheet.instruments.items()],

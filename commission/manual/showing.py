@@ -7,7 +7,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from commission.description import Assumption
-from commission.quantities import NOMENCLATURE, Display, Explained, Input, Kind, methods, pretty
+from commission.quantities import Display, Explained, Input, Kind, methods, pretty
 
 COVERAGE = 2.0
 """Bands are the expected value plus and minus this many standard uncertainties (about 95 %; JCGM 100, 6.3.3)."""
@@ -54,20 +54,20 @@ class Row:
     because: str | None = None
 
 
-def label_of(key: str) -> str:
+def label_of(key: str, display: Display) -> str:
     """The label of a nomenclature key or of a safety figure, or the words themselves."""
-    if key in NOMENCLATURE:
-        return NOMENCLATURE[key].label
+    if key in display.quantities:
+        return display.label(key)
     title = _safety_titles().get(key)
     if title is not None:
         return title[0][:1].upper() + title[0][1:]
     return key.replace("_", " ")
 
 
-def kind_of(explained: Explained) -> Kind:
+def kind_of(explained: Explained, display: Display) -> Kind:
     """The kind of an explained value: of the nomenclature, of a safety figure, else a plain number."""
-    if explained.quantity in NOMENCLATURE:
-        return NOMENCLATURE[explained.quantity].kind
+    if explained.quantity in display.quantities:
+        return display.kind(explained.quantity)
     title = _safety_titles().get(explained.quantity)
     return title[1] if title is not None else Kind.NUMBER
 
@@ -146,14 +146,15 @@ def _input_text(item: Input, display: Display) -> str:
         return f"{item.value:.0f} Pa absolute"
     if item.kind is Kind.VOLUME and item.value >= _CUBIC_METRE and display.system == "metric":
         return f"{item.value:.1f} m³"
-    return display.text(item.value, item.kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None)
+    kind = display.kind(item.name) if item.name in display.quantities else item.kind
+    return display.text(item.value, kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None)
 
 
 def show_input(item: Input, display: Display) -> ShownInput:
     """One input with its unit and origin."""
     match = _ASSUMPTION.match(item.origin)
     return ShownInput(
-        name=label_of(item.name),
+        name=label_of(item.name, display),
         value=_input_text(item, display),
         origin=item.origin,
         assumption=match.group(1) if match else None,
@@ -173,7 +174,7 @@ def show_how(
         KeyError: the method is not in `methods.yaml` (a fault of the package).
     """
     method = methods()[explained.method]
-    kind = kind or kind_of(explained)
+    kind = kind or kind_of(explained, display)
     ordered = sorted((parts or {}).items(), key=lambda item: -abs(item[1]))
     return How(
         method=method.key,
@@ -202,11 +203,11 @@ def show(
     parts: Mapping[str, float] | None = None,
 ) -> Row:
     """The row of an explained number."""
-    kind = kind_of(explained)
-    meant = NOMENCLATURE[key].definition if key in NOMENCLATURE else ""
+    kind = kind_of(explained, display)
+    meant = display.quantities[key].definition if key in display.quantities else ""
     return Row(
         key=key,
-        label=label_of(key),
+        label=label_of(key, display),
         definition="; ".join(t for t in (meant, less_than_zero(key, explained.value, explained.uncertainty)) if t),
         value=display.number(explained.value, kind),
         unit=unit_of(display, kind),
@@ -215,10 +216,10 @@ def show(
     )
 
 
-def not_calculated(key: str, reason: str) -> Row:
+def not_calculated(key: str, reason: str, display: Display) -> Row:
     """The row of a number that could not be calculated, with the reason."""
-    definition = NOMENCLATURE[key].definition if key in NOMENCLATURE else ""
-    return Row(key, label_of(key), definition, None, "", "", None, because=reason)
+    definition = display.quantities[key].definition if key in display.quantities else ""
+    return Row(key, label_of(key, display), definition, None, "", "", None, because=reason)
 
 
 GROUPS: tuple[tuple[str, tuple[str, ...]], ...] = (
@@ -260,3 +261,19 @@ def grouped(keys: Sequence[str]) -> tuple[tuple[str, tuple[str, ...]], ...]:
     known = {k for _, members in GROUPS for k in members}
     groups.append(("Further values", tuple(k for k in keys if k not in known)))
     return tuple((title, members) for title, members in groups if members)
+
+
+GRID_KEYS = (
+    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
+    "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
+    "evaporator_approach", "condensing_temperature", "condenser_temperature_difference", "condenser_approach",
+    "subcooling", "heat_source_outlet_temperature", "heat_source_outlet_wet_bulb", "heat_sink_inlet_temperature",
+    "heat_sink_outlet_temperature", "heat_sink_flow", "power_input", "current", "cooling_capacity",
+    "heating_capacity", "heating_capacity_with_defrosts", "cooling_cop", "heating_cop", "heating_cop_with_defrosts",
+)  # fmt: skip
+"""The rows of the table over the weather."""
+_NOT_ON_A_SHEET = {
+    "evaporating_temperature", "superheat", "condensing_temperature", "heat_sink_inlet_temperature", "heat_sink_flow",
+}  # fmt: skip
+SHEET_KEYS = tuple(k for k in GRID_KEYS[: GRID_KEYS.index("current") + 1] if k not in _NOT_ON_A_SHEET)
+"""Expectations that are printed on a sheet, where they can be read; a frozen sheet holds all of them."""

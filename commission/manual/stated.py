@@ -9,7 +9,7 @@ from pydantic import BaseModel
 
 from commission.description import Conditions, LoadedPlant
 from commission.manual.facts import Walker, stated_number, words_of
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import Display, Kind
 
 Lines = tuple[tuple[str, str], ...]
 _COUNTS, _PLACE = "The power input counts", "Written in"
@@ -55,7 +55,7 @@ def _point(walker: Walker, point: BaseModel, path: tuple[str | int, ...]) -> Ite
         value = getattr(point, key)
         if value is None or key == "source":
             continue
-        yield (_COUNTS if key == "includes" else words_of(key)), walker.text(value, info, key)
+        yield (_COUNTS if key == "includes" else words_of(key, walker.display)), walker.text(value, info, key)
     yield _PLACE, str(walker.loaded.where((*walker.base, *path))).rsplit(":", 1)[0]
 
 
@@ -81,7 +81,7 @@ def _promise(loaded: LoadedPlant, identity: str, display: Display, n: int) -> Pr
         if v is not None
     )
     lines = [
-        (NOMENCLATURE[g.quantity].label, display.text(g.value_si, NOMENCLATURE[g.quantity].kind)),
+        (display.label(g.quantity), display.text(g.value_si, display.kind(g.quantity))),
         ("Tolerance", tolerance or "none stated"),
         ("Decision", f"{g.decision} acceptance"),
         ("Carried to the day by", g.carried_by),
@@ -97,4 +97,4 @@ def _promise(loaded: LoadedPlant, identity: str, display: Display, n: int) -> Pr
 def conditions_text(conditions: BaseModel, display: Display) -> str:
     """The stated conditions in one line."""
     keys = [k for k in Conditions.model_fields if getattr(conditions, k, None) is not None]
-    return ", ".join(f"{NOMENCLATURE[k].label.lower()} {display.of(k, getattr(conditions, k))}" for k in keys)
+    return ", ".join(f"{display.words(k)} {display.of(k, getattr(conditions, k))}" for k in keys)

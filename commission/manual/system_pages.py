@@ -16,11 +16,11 @@ from commission.manual.grid import Grid, GridPoint
 from commission.manual.heating_up import heating_ups
 from commission.manual.plots import Figure
 from commission.manual.showing import (
+    GRID_KEYS,
     How,
     Row,
     band_text,
     grouped,
-    label_of,
     not_calculated,
     show,
     show_how,
@@ -49,9 +49,9 @@ def what_it_is(
             "coming": coming,
             "filed": filed,
             "upkeep": upkeep,
-            "groups": system_facts(plant.loaded, data.id, plant.display),
-            "rated": rated_tables(plant.loaded, data.id, plant.display),
-            "promised": promises(plant.loaded, data.id, plant.display),
+            "groups": system_facts(plant.loaded, data.id, data.display),
+            "rated": rated_tables(plant.loaded, data.id, data.display),
+            "promised": promises(plant.loaded, data.id, data.display),
             "documents": documents,
             "assumptions_page": data.page("assumptions"),
         },
@@ -65,53 +65,35 @@ _PARTS = (
 )  # fmt: skip
 
 
-def side_name(plant: PlantData, data: SystemData, side: str) -> str:
-    """A medium as people on site say it: `Cold room air`, `water`."""
-    medium = getattr(data.system, side)
-    if medium.medium != "air" or not medium.space:
-        return str(medium.medium)
-    space = plant.loaded.plant.spaces.get(medium.space)
-    return f"air of {(space.name if space else None) or medium.space}"
-
-
-def conditions_words(
-    plant: PlantData, data: SystemData, conditions: Mapping[str, float]
-) -> tuple[tuple[str, str], ...]:
-    """Conditions by side: what, and its values in one line."""
-    display = plant.display
+def conditions_words(data: SystemData, conditions: Mapping[str, float]) -> tuple[tuple[str, str], ...]:
+    """Conditions by medium: what, and its values in one line."""
+    display = data.display
     lines = []
-    for side, words in (("heat_source", "Heat source"), ("heat_sink", "Heat sink")):
+    for side in ("heat_source", "heat_sink"):
         values = [
-            form.format(stated_number(display, conditions[f"{side}_{part}"], NOMENCLATURE[f"{side}_{part}"].kind))
+            form.format(stated_number(display, conditions[f"{side}_{part}"], display.kind(f"{side}_{part}")))
             for part, form in _PARTS
             if f"{side}_{part}" in conditions
         ]
         if values:
-            lines.append((f"{words}: {side_name(plant, data, side)}", ", ".join(values)))
+            lines.append((display.medium(side), ", ".join(values)))
     others = {k: v for k, v in conditions.items() if not k.startswith(("heat_source", "heat_sink"))}
-    lines += [(label_of(k), display.of(k, v)) for k, v in others.items() if k in NOMENCLATURE]
+    lines += [(display.label(k), display.of(k, v)) for k, v in others.items() if k in NOMENCLATURE]
     return tuple(lines)
 
 
-def conditions_line(plant: PlantData, data: SystemData, conditions: Mapping[str, float]) -> str:
+def conditions_line(data: SystemData, conditions: Mapping[str, float]) -> str:
     """The same in one sentence part."""
-    parts = []
-    for what, values in conditions_words(plant, data, conditions):
-        side, _, name = what.partition(": ")
-        liquid = bool(name) and not name.startswith("air of ")
-        parts.append(f"{name} of the {side.lower()} {values}" if liquid else f"{name or what.lower()} {values}")
-    return "; ".join(parts)
+    return "; ".join(f"{what[:1].lower()}{what[1:]} {values}" for what, values in conditions_words(data, conditions))
 
 
-def grid_conditions(plant: PlantData, data: SystemData, grid: Grid) -> str:
+def grid_conditions(data: SystemData, grid: Grid) -> str:
     """What stays while the grid's condition varies, and what the weather curve sets by it."""
-    led = "; ".join(f"{label_of(k).lower()} as the weather curve sets it" for k in grid.led)
-    return "; ".join(
-        text for text in (conditions_line(plant, data, grid.fixed), led, _slowed(plant, data, grid)) if text
-    )
+    led = "; ".join(f"{data.display.words(k)} as the weather curve sets it" for k in grid.led)
+    return "; ".join(text for text in (conditions_line(data, grid.fixed), led, _slowed(data, grid)) if text)
 
 
-def _slowed(plant: PlantData, data: SystemData, grid: Grid) -> str:
+def _slowed(data: SystemData, grid: Grid) -> str:
     """Where the head-pressure control leaves least of the stated flow, and how much; empty where it never acts."""
     from commission.prediction.operation import FULL, flow_left
 
@@ -120,7 +102,8 @@ def _slowed(plant: PlantData, data: SystemData, grid: Grid) -> str:
     control = data.system.controls.head_pressure
     if control is None or share >= FULL:
         return ""
-    return f"the flow of the heat sink {flow_left(control.by, share)} at {plant.display.text(at, Kind.TEMPERATURE, 0)}"
+    flow, outdoors = data.display.words("heat_sink_flow"), data.display.text(at, Kind.TEMPERATURE, 0)
+    return f"the {flow} {flow_left(control.by, share)} at {outdoors}"
 
 
 def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[Row, ...]], ...]:
@@ -134,22 +117,12 @@ def expected_rows(data: SystemData, display: Display) -> tuple[tuple[str, tuple[
             tuple(
                 show(k, p.expected[k], display, data.assumptions, p.parts.get(k))
                 if k in p.expected
-                else not_calculated(k, p.not_calculated[k])
+                else not_calculated(k, p.not_calculated[k], display)
                 for k in members
             ),
         )
         for title, members in grouped(keys)
     )
-
-
-GRID_KEYS = (
-    "suction_pressure", "discharge_pressure", "suction_temperature", "discharge_temperature", "liquid_temperature",
-    "evaporating_temperature", "evaporator_temperature_difference", "superheat", "compressor_superheat",
-    "evaporator_approach", "condensing_temperature", "condenser_temperature_difference", "condenser_approach",
-    "subcooling", "heat_source_outlet_temperature", "heat_source_outlet_wet_bulb", "heat_sink_inlet_temperature",
-    "heat_sink_outlet_temperature", "heat_sink_flow", "power_input", "current", "cooling_capacity",
-    "heating_capacity", "heating_capacity_with_defrosts", "cooling_cop", "heating_cop", "heating_cop_with_defrosts",
-)  # fmt: skip
 
 
 @dataclass(frozen=True, slots=True)
@@ -225,7 +198,7 @@ def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
     explained = point.prediction.expected.get(key) if point.prediction else None
     if explained is None:
         return Cell("–", "")
-    return cell(key, explained, NOMENCLATURE[key].kind, display)
+    return cell(key, explained, display.kind(key), display)
 
 
 def cell(key: str, explained: Explained, kind: Kind, display: Display) -> Cell:
@@ -239,7 +212,7 @@ def _grid_row(
 ) -> GridRow:
     first = next(p.prediction.expected[key] for p in good if p.prediction and key in p.prediction.expected)
     how = show_how(first, display, data.assumptions)
-    quantity = NOMENCLATURE[key]
+    quantity = display.quantities[key]
     return GridRow(
         key,
         quantity.label,
@@ -266,17 +239,17 @@ def _row_inputs(data: SystemData, key: str, good: list[GridPoint], display: Disp
 
 def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure, ...], ph: Figure | None) -> Sheet:
     """Expected readings at the rated condition and over the weather, charts and cycle."""
-    display = plant.display
+    display = data.display
     context: dict[str, Any] = {"because": data.because}
     if data.rated is not None:
         grid = data.grid
         context |= {
-            "conditions": conditions_words(plant, data, data.rated.conditions),
+            "conditions": conditions_words(data, data.rated.conditions),
             "warnings": data.rated.warnings,
             "settings": [words for one in data.rated.held_off if (words := one.words(display))],
             "groups": expected_rows(data, display),
             "charts": figures,
-            "grid_note": _grid_note(plant, data, grid) if grid else "",
+            "grid_note": _grid_note(data, grid) if grid else "",
             "table": grid_table(data, grid, display) if grid else None,
             "heating_up": heating_ups(plant, data),
             "ph": _ph_context(data, ph, display) if ph else None,
@@ -286,9 +259,9 @@ def how_it_should_run(plant: PlantData, data: SystemData, figures: tuple[Figure,
     return Sheet(data.page("how-it-should-run"), "How it should run", data.group, "expected.html", context, data.kicker)
 
 
-def _grid_note(plant: PlantData, data: SystemData, grid: Grid) -> str:
-    display = plant.display
-    fixed = grid_conditions(plant, data, grid)
+def _grid_note(data: SystemData, grid: Grid) -> str:
+    display = data.display
+    fixed = grid_conditions(data, grid)
     text = f"Everything else is as rated: {fixed}. " if fixed else ""
     regimes = [(p.temperature, p.prediction.regime) for p in grid.points if p.prediction]
     changes = [(t, r) for (_, before), (t, r) in pairwise(regimes) if r != before]
@@ -321,9 +294,9 @@ def _ph_context(data: SystemData, ph: Figure, display: Display) -> dict[str, Any
     }
 
 
-def assumptions(plant: PlantData, data: SystemData) -> Sheet:
+def assumptions(data: SystemData) -> Sheet:
     """What is assumed, with its effect, and the one most worth replacing."""
-    shown = shown_assumptions(data, plant.display)
+    shown = shown_assumptions(data, data.display)
     worst = shown[0] if shown and (shown[0].share or 0) > 0 else None
     note = ""
     if data.effects:

@@ -8,9 +8,9 @@ from commission.errors import CommissionError
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.heating_up import HeatingUps, heating_ups
-from commission.manual.page_display import PageDisplay
+from commission.manual.page_display import page_display
 from commission.manual.records_pages import VERDICT_CLASS, Archive, signed, title_of, when
-from commission.manual.showing import label_of, unit_of
+from commission.manual.showing import unit_of
 from commission.quantities import NOMENCLATURE, Display, Kind
 
 if TYPE_CHECKING:
@@ -32,7 +32,7 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
     if said is not None and said.phases:
         written = f"{', '.join(said.phases)}; mean {display.of(key, r.value)}"
     return {
-        "label": label_of(key),
+        "label": display.label(key),
         "written": written,
         "where": "; ".join(text for text in (r.where, said and said.remark) if text),
         "instrument": r.instrument or "not stated",
@@ -40,9 +40,9 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
 
 
 def _deviation(display: Display, key: str, d: FrozenDeviation, written: str) -> dict[str, Any]:
-    kind = NOMENCLATURE[key].kind
+    kind = display.kind(key)
     return {
-        "label": label_of(key),
+        "label": display.label(key),
         "unit": unit_of(display, kind),
         "read": display.number(d.reading, kind),
         "written": written,
@@ -60,23 +60,16 @@ def _limits(display: Display, kind: Kind, low: float | None, high: float | None)
     return " and ".join(parts)
 
 
-def _share_sure(probability: float | None) -> str:
-    """A probability in per cent; nothing measured is certain, so none is printed as 100.0 or 0.0."""
-    if probability is None:
-        return ""
-    if probability > 0.999:
-        return "more than 99.9 %"
-    return "less than 0.1 %" if probability < 0.001 else f"{100.0 * probability:.1f} %"
-
-
 def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
-    kind = NOMENCLATURE[g.quantity].kind
+    from commission.acceptance.decision import sure_text
+
+    kind = display.kind(g.quantity)
     shares = [
         f"{display.text(v, Kind.RATIO, 1)} {word}"
         for v, word in ((g.below, "below"), (g.above, "above"))
         if v is not None
     ]
-    at = ", ".join(f"{label_of(k).lower()} {display.of(k, v)}" for k, v in g.at.items())
+    at = ", ".join(f"{display.words(k)} {display.of(k, v)}" for k, v in g.at.items())
     pairs = [
         ("Promised", f"{display.text(g.guaranteed, kind)} at {at}" if at else display.text(g.guaranteed, kind)),
         ("Tolerance", ", ".join(shares) or "none stated"),
@@ -89,14 +82,14 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
          if g.expanded is not None else ""),
         ("Decision rule", f"{g.rule} acceptance"),
         ("Accepted where", _limits(display, kind, g.acceptance_low, g.acceptance_high)),
-        ("Probability of conformity", _share_sure(g.probability)),
+        ("Probability of conformity", "" if g.probability is None else sure_text(g.probability)),
         ("Target frozen before the test", "yes" if g.frozen_before else "no"),
         ("Clause", g.source or ""),
         ("No verdict because", g.withheld or ""),
         ("What would decide", g.what_would_decide or ""),
     ]  # fmt: skip
     return {
-        "label": label_of(g.quantity),
+        "label": display.label(g.quantity),
         "outcome": g.outcome,
         "look": VERDICT_CLASS[g.outcome],
         "facts": [{"label": a, "text": t} for a, t in pairs if t],
@@ -105,14 +98,15 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
 
 def _closure(display: Display, c: FrozenClosure) -> dict[str, Any]:
     """Two routes held against each other, as a sentence and whether they agree."""
-    kind = NOMENCLATURE["cooling_capacity" if c.quantity == "first law" else c.quantity].kind
+    kind = display.kind("cooling_capacity" if c.quantity == "first law" else c.quantity)
     difference = (
         f"{signed(display, kind, c.difference)} ± {display.spread(c.expanded, kind)} {display.spread_unit(kind)}"
     )
     if c.quantity == "first law":
-        text = f"Heat to the sink ({c.second}) less heat from the source ({c.first}) less power: {difference}"
+        given, taken = display.label("heating_capacity"), display.words("cooling_capacity")
+        text = f"{given} ({c.second}) less {taken} ({c.first}) less power: {difference}"
     else:
-        text = f"{label_of(c.quantity)} by {c.first} less that by {c.second}: {difference}"
+        text = f"{display.label(c.quantity)} by {c.first} less that by {c.second}: {difference}"
     return {"text": text, "agree": not c.significant}
 
 
@@ -154,7 +148,7 @@ def _standing(record: FiledRecord, archive: Archive) -> list[dict[str, Any]]:
 
 def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> dict[str, Any]:
     """What record page and certificate share."""
-    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
+    display = page_display(plant.loaded, data.id, record.filed.barometric_pressure)
     filed, file = record.filed, record.file
     return {
         "record": record,
@@ -222,7 +216,8 @@ def _not_judged(plant: PlantData, data: SystemData, filed: FiledBlock) -> dict[s
     found = heating_ups(plant, data) if heated else None
     return {
         "not_judged": [
-            (label_of(k), (_heat_up(found, k) if k in _HEAT_UP else None) or why) for k, why in filed.not_judged.items()
+            (data.display.label(k), (_heat_up(found, k) if k in _HEAT_UP else None) or why)
+            for k, why in filed.not_judged.items()
         ],
         "heated": found.words if found else None,
         "running_page": data.page("how-it-should-run"),
@@ -231,7 +226,7 @@ def _not_judged(plant: PlantData, data: SystemData, filed: FiledBlock) -> dict[s
 
 def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> Sheet:
     """One visit as it was filed."""
-    display = PageDisplay(plant.display.system, record.filed.barometric_pressure)
+    display = page_display(plant.loaded, data.id, record.filed.barometric_pressure)
     filed = record.filed
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
@@ -245,7 +240,12 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
         "answers": _answers(plant, data, record),
         **_not_judged(plant, data, filed),
         "routes": [
-            (r.route, label_of(r.quantity), None if r.value is None else display.of(r.quantity, r.value), r.refused)
+            (
+                r.route,
+                display.label(r.quantity),
+                None if r.value is None else display.of(r.quantity, r.value),
+                r.refused,
+            )
             for r in filed.routes
         ],
         "corrected_page": archive.pages.get(corrected) if corrected else None,

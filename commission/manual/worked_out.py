@@ -43,10 +43,10 @@ def how(key: str, refrigerant: Refrigerant | None, predictions: Sequence[Predict
         "superheat": f"evaporator outlet minus evaporating: {evaporating}",
         "compressor_superheat": f"suction line minus {dew} at the {low} gauge",
         "condenser_temperature_difference": f"condensing is {condensing}",
-        "evaporator_approach": f"source outlet minus evaporating: {evaporating}",
-        "condenser_approach": f"condensing minus sink outlet: {condensing}",
+        "evaporator_approach": f"evaporating is {evaporating}",
+        "condenser_approach": f"condensing is {condensing}",
         "subcooling": f"{before_valve}, minus liquid line",
-        "gas_cooler_approach": "gas-cooler outlet minus sink inlet",
+        "gas_cooler_approach": display.words("gas_cooler_approach"),
         "heat_source_temperature_change": "inlet minus outlet",
         "heat_sink_temperature_change": "outlet minus inlet",
     }

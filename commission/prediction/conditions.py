@@ -7,13 +7,14 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from itertools import pairwise
 
+from commission.description import outdoor_sides
 from commission.errors import InputError, Problem, nearest
 from commission.prediction.facts import Facts
 from commission.prediction.plan import Plan
 from commission.prediction.rated import Case
 from commission.prediction.streams import once_through
 from commission.properties import moist_air
-from commission.quantities import NOMENCLATURE
+from commission.quantities import NOMENCLATURE, Quantity
 
 KELVIN = 273.15
 HUMIDITY, WET_BULB = "heat_source_relative_humidity", "heat_source_wet_bulb"
@@ -101,11 +102,7 @@ def _of_design(facts: Facts, case: Case, key: str) -> float:
 def _temperature_axis(facts: Facts, side: str, key: str, rated: float) -> ConditionAxis:
     """Outdoor air spans the weather of the site and 5 K more; rooms and liquids span what a visit may meet."""
     system = facts.system
-    medium = system.heat_source if side == "heat_source" else system.heat_sink
-    space = facts.loaded.plant.spaces.get(medium.space or "")
-    heating = system.duty in ("space_heating", "water_heating")
-    outdoors = medium.medium == "air" and (space.outdoors if space is not None else (side == "heat_source") == heating)
-    if outdoors:
+    if side in outdoor_sides(facts.loaded.plant, system):
         climate = facts.loaded.plant.plant.climate
         low = (climate.winter_dry_bulb if climate.winter_dry_bulb is not None else KELVIN - 10.0) - 5.0
         high = (climate.summer_dry_bulb if climate.summer_dry_bulb is not None else KELVIN + 33.0) + 5.0
@@ -146,17 +143,21 @@ def with_weather_curve(
         flow = max(flow, curve.lowest_flow)
     if curve.highest_flow is not None:
         flow = min(flow, curve.highest_flow)
-    shown = f"{NOMENCLATURE[FLOW].label.lower()} {facts.shown.of(FLOW, flow)}"
+    shown = f"{facts.shown.words(FLOW)} {facts.shown.of(FLOW, flow)}"
     note = f"{shown} is that of the weather curve, it was not given"
     return {**given, FLOW: flow}, (note,)
 
 
 def complete(
-    axes: Mapping[str, ConditionAxis], given: Mapping[str, float] | None, pressure: float = 101325.0
+    axes: Mapping[str, ConditionAxis],
+    given: Mapping[str, float] | None,
+    pressure: float = 101325.0,
+    names: Mapping[str, Quantity] = NOMENCLATURE,
 ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
     """The whole condition, the keys filled from the rated one, and a warning for each value outside its range.
 
-    A wet bulb of the source air may stand in place of its relative humidity, at barometric `pressure` (Pa).
+    A wet bulb of the source air may stand in place of its relative humidity, at barometric `pressure` (Pa). `names` is
+    the nomenclature of the system.
 
     Raises:
         InputError: a key that this system has no condition for, or a value that is no finite number.
@@ -196,7 +197,7 @@ def complete(
         whole[used] = given.get(used, axis.rated)
     filled = tuple(key for key in whole if key not in given)
     outside = tuple(
-        f"{NOMENCLATURE[key].label} lies outside the range for which this system is described"
+        f"{names[key].label} lies outside the range for which this system is described"
         for key, axis in axes.items()
         if key in whole and not axis.low - 1e-9 <= whole[key] <= axis.high + 1e-9
     )

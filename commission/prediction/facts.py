@@ -56,8 +56,8 @@ class Facts:
 
     @property
     def shown(self) -> Display:
-        """How this plant shows numbers in a sentence."""
-        return Display(self.loaded.plant.plant.units, self.pressure)
+        """How people of this plant name and read the quantities of this system, in a sentence."""
+        return self.loaded.display(self.identity)
 
     @property
     def transcritical(self) -> bool:

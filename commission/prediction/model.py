@@ -23,7 +23,7 @@ from commission.prediction.refusals import cannot_be, fitted, walk
 from commission.prediction.settings import HeldOff, held_off
 from commission.prediction.streams import media
 from commission.properties import Refrigerant
-from commission.quantities import NOMENCLATURE, Explained, Input, Kind
+from commission.quantities import Explained, Input, Kind
 
 PROPERTY = "property source"
 RATED_FIGURES = (
@@ -231,7 +231,7 @@ class SystemModel:
                 raise InputError(Problem("this quantity is not expected of this system", value=key))
             return (found.values[key] / reading - 1,)
 
-        none = f"no {NOMENCLATURE[condition].label.lower()} within its range explains this reading"
+        none = f"no {self.facts.shown.words(condition)} within its range explains this reading"
         try:
             x = solve(gap, (1.0,), difference=1e-3, largest_step=0.3, tolerance=1e-7).x[0] * axis.rated
         except NotCalculatedError as error:
@@ -244,7 +244,7 @@ class SystemModel:
         self, conditions: Mapping[str, float] | None
     ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
         given, note = with_weather_curve(self.facts, self.condition_axes, conditions or {})
-        whole, filled, outside = complete(self.condition_axes, given, self.facts.pressure)
+        whole, filled, outside = complete(self.condition_axes, given, self.facts.pressure, self.facts.shown.quantities)
         why = cannot_be(self.facts, whole)
         if why is not None:
             raise NotCalculatedError(why)

@@ -31,7 +31,7 @@ def _slowed(facts: Facts, conditions: Mapping[str, float], point: OperatingPoint
     flow = conditions.get("heat_sink_flow")
     if control is not None and control.by in _ACTS and flow is not None and share < FULL:
         stated, left = (facts.shown.of("heat_sink_flow", x) for x in (flow, share * flow))
-        yield f"the heat sink flow of {stated} {flow_left(control.by, share)}: about {left}"
+        yield f"the {facts.shown.words('heat_sink_flow')} of {stated} {flow_left(control.by, share)}: about {left}"
 
 
 def _ices(facts: Facts, point: OperatingPoint) -> Iterator[str]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
+from commission.description.model import CoolerRating
 from commission.errors import NotCalculatedError
 from commission.machine import Stream, between, coil_conductance, conductance_for, within_reach
 from commission.prediction.building import air_share
@@ -18,15 +19,20 @@ RATED_LIQUID = 303.15
 """Liquid temperature in K at which an evaporator is rated (EN 328, from memory)."""
 
 
+COOLER_AIR, CONDENSER_AIR = 2.0 + KELVIN, 25.0 + KELVIN
+"""Air on in K of a catalogue rating that does not state it (common practice, no source)."""
+
+
+def _air_on(rating: CoolerRating, usual: float) -> float:
+    return usual if rating.air_on is None else rating.air_on
+
+
 def evaporator_conductance(facts: Facts, a: Mapping[str, float], source_flow: float) -> float | None:
     """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
     part = facts.system.evaporator
-    if part.conductance is not None:
+    if part.conductance is not None or part.rating is None:
         return part.conductance
-    if part.rating is None:
-        return None
-    rating = part.rating
-    air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
+    rating, air_on = part.rating, _air_on(part.rating, COOLER_AIR)
     medium = stream(air_on, source_flow, facts.source_liquid, humidity(facts, a), facts.pressure)
     capacity = rating.capacity * (1.0 + a["evaporator_rating_departure"])
     dew = rating_difference(facts, a)
@@ -56,7 +62,7 @@ def rating_difference(facts: Facts, a: Mapping[str, float]) -> float | None:
     rating = facts.system.evaporator.rating
     if rating is None:
         return None
-    air_on = rating.air_on if rating.air_on is not None else 2.0 + KELVIN
+    air_on = _air_on(rating, COOLER_AIR)
     glide = facts.glide(air_on - rating.temperature_difference)
     return rating.temperature_difference - _to_the_mean(facts, a, rating.at) * MEAN_BELOW_DEW * glide
 
@@ -64,12 +70,9 @@ def rating_difference(facts: Facts, a: Mapping[str, float]) -> float | None:
 def condenser_conductance(facts: Facts, a: Mapping[str, float], sink_flow: float) -> float | None:
     """Conductance in W/K that is stated or follows from a catalogue rating; None where it must be fitted."""
     part = facts.system.condenser
-    if part.conductance is not None:
+    if part.conductance is not None or part.rating is None:
         return part.conductance
-    if part.rating is None:
-        return None
-    rating = part.rating
-    air_on = rating.air_on if rating.air_on is not None else 25.0 + KELVIN
+    rating, air_on = part.rating, _air_on(part.rating, CONDENSER_AIR)
     medium = stream(air_on, sink_flow, facts.sink_liquid, SINK_HUMIDITY, facts.pressure)
     capacity = rating.capacity * (1.0 + a["condenser_rating_departure"])
     half = 0.5 * facts.glide(air_on + rating.temperature_difference)

@@ -12,7 +12,6 @@ from commission.prediction.expected import Found
 from commission.prediction.facts import Facts
 from commission.properties import Liquid
 from commission.properties.errors import PropertyRangeError
-from commission.quantities import NOMENCLATURE
 
 R = TypeVar("R")
 Values = Mapping[str, float]
@@ -26,17 +25,17 @@ AIR = 173.15, 373.15
 def cannot_be(facts: Facts, conditions: Values) -> str | None:
     """Why a condition is none that media could have: a flow of nothing, humidity above saturation, ice."""
     for key, value in conditions.items():
-        label, shown = NOMENCLATURE[key].label.lower(), facts.shown.of(key, value)
+        label, shown = facts.shown.words(key), facts.shown.of(key, value)
         if key.endswith(("_flow", "_speed")) and value <= 0:
-            return f"a {label} of {shown} cannot be: it must be above zero"
+            return f"{label} of {shown} cannot be: it must be above zero"
         if key.endswith("_humidity") and not 0 <= value <= 1:
-            return f"a {label} of {shown} cannot be: it lies between 0 and 100 %"
+            return f"{label} of {shown} cannot be: it lies between 0 and 100 %"
         if key.endswith("_temperature"):
             medium = facts.source_liquid if key.startswith("heat_source") else facts.sink_liquid
             low, high, name = _range(medium)
             if not low <= value <= high:
                 where = f"from {facts.shown.of(key, low)} to {facts.shown.of(key, high)}"
-                return f"a {label} of {shown} cannot be: {name} is calculated {where}"
+                return f"{label} of {shown} cannot be: {name} is calculated {where}"
     for side, medium in (("heat_source", facts.source_liquid), ("heat_sink", facts.sink_liquid)):
         if medium is None and f"{side}_inlet_temperature" not in conditions:
             return "a condition of air is its inlet temperature; its outlet temperature follows"
@@ -86,7 +85,7 @@ def walk(
         return last
     edge = _between(start, whole, done)
     near = ", ".join(
-        f"{NOMENCLATURE[k].label.lower()} {facts.shown.of(k, edge[k])}"
+        f"{facts.shown.words(k)} {facts.shown.of(k, edge[k])}"
         for k in whole
         if abs(whole[k] - start[k]) > 1e-9 * abs(start[k])
     )

@@ -2,12 +2,13 @@
 
 from commission.quantities.display import Display, json_value, pretty
 from commission.quantities.explained import Explained, Input, Method, methods
-from commission.quantities.kinds import SI_UNIT, Kind
-from commission.quantities.nomenclature import NOMENCLATURE, Quantity
+from commission.quantities.kinds import FLOWS, SI_UNIT, Kind
+from commission.quantities.nomenclature import NOMENCLATURE, MediumName, Quantity, nomenclature
 from commission.quantities.parse import Pressure, QuantityError, describe, parse, parse_number, parse_pressure
 from commission.quantities.units import UNITS, Reference, Unit, find_unit
 
 __all__ = [
+    "FLOWS",
     "NOMENCLATURE",
     "SI_UNIT",
     "UNITS",
@@ -15,6 +16,7 @@ __all__ = [
     "Explained",
     "Input",
     "Kind",
+    "MediumName",
     "Method",
     "Pressure",
     "Quantity",
@@ -25,6 +27,7 @@ __all__ = [
     "find_unit",
     "json_value",
     "methods",
+    "nomenclature",
     "parse",
     "parse_number",
     "parse_pressure",

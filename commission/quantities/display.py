@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, field
 from typing import Literal
 
-from commission.quantities.kinds import Kind
-from commission.quantities.nomenclature import NOMENCLATURE
+from commission.quantities.kinds import FLOWS, Kind
+from commission.quantities.nomenclature import NOMENCLATURE, Quantity
 from commission.quantities.units import Reference, Unit, find_unit
 
 UnitSystem = Literal["metric", "us_customary"]
@@ -24,6 +25,7 @@ _SHOWN: dict[Kind, tuple[tuple[str, int], tuple[str, int]]] = {
     Kind.LENGTH: (("m", 2), ("ft", 1)),
     Kind.AREA: (("m2", 1), ("ft2", 0)),
     Kind.VOLUME_FLOW: (("m3/h", 0), ("cfm", 0)),
+    Kind.LIQUID_FLOW: (("m3/h", 0), ("gpm", 0)),
     Kind.MASS_FLOW: (("kg/h", 1), ("lb/h", 1)),
     Kind.CONDUCTANCE: (("W/K", 0), ("Btu/h °F", 0)),
     Kind.CURRENT: (("A", 1), ("A", 1)),
@@ -51,20 +53,22 @@ def _unit(name: str, kind: Kind) -> Unit:
 def _places(usual: int, kind: Kind, shown: float) -> int:
     """Digits behind the point: a volume flow runs from a litre of water a minute to air by the thousand m3/h, and keeps
     three figures."""
-    if kind is not Kind.VOLUME_FLOW:
+    if kind not in FLOWS:
         return usual
     return next((places for least, places in ((100.0, 0), (10.0, 1), (1.0, 2)) if abs(shown) >= least), 3)
 
 
 @dataclass(frozen=True, slots=True)
 class Display:
-    """Shows SI values to a person at one site.
+    """Shows quantities to a person at one site: their names, and SI values as numbers with units.
 
-    `barometric_pressure` in Pa turns absolute pressures into the gauge pressures that instruments show.
+    `barometric_pressure` in Pa turns absolute pressures into the gauge pressures that instruments show. `quantities` is
+    the nomenclature of the system in question, which calls its media by their names; that of any system where none is.
     """
 
     system: UnitSystem
     barometric_pressure: float
+    quantities: Mapping[str, Quantity] = field(default_factory=lambda: NOMENCLATURE, repr=False)
 
     def unit_and_digits(self, kind: Kind) -> tuple[str, int]:
         """The unit shown for `kind` and the digits behind the point."""
@@ -124,7 +128,27 @@ class Display:
 
     def of(self, key: str, value: float) -> str:
         """Number and unit of a quantity of the nomenclature."""
-        return self.text(value, NOMENCLATURE[key].kind)
+        return self.text(value, self.quantities[key].kind)
+
+    def label(self, key: str) -> str:
+        """What a quantity of the nomenclature is called here, as the head of a line."""
+        return self.quantities[key].label
+
+    def words(self, key: str) -> str:
+        """The same inside a sentence."""
+        return self.quantities[key].words
+
+    def short(self, key: str) -> str:
+        """The label of a condition beside its value in °C: `Outdoor air` where it enters, `Heating water outlet`."""
+        return self.label(key).removesuffix(" temperature").replace(" air inlet", " air")
+
+    def medium(self, side: str) -> str:
+        """What the medium of `heat_source` or `heat_sink` is called here, as a label."""
+        return self.label(f"{side}_flow").removesuffix(" flow")
+
+    def kind(self, key: str) -> Kind:
+        """The kind in which a quantity of the nomenclature is shown here."""
+        return self.quantities[key].kind
 
 
 def pretty(unit: str) -> str:

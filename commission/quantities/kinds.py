@@ -20,6 +20,7 @@ class Kind(StrEnum):
     LENGTH = "length"
     AREA = "area"
     VOLUME_FLOW = "volume flow"
+    LIQUID_FLOW = "liquid flow"
     MASS_FLOW = "mass flow"
     CONDUCTANCE = "thermal conductance"
     CURRENT = "electric current"
@@ -34,6 +35,9 @@ class Kind(StrEnum):
     SOUND_LEVEL = "sound pressure level"
 
 
+FLOWS = (Kind.VOLUME_FLOW, Kind.LIQUID_FLOW)
+"""Volume flows: of air, gas or anything; and of what is known to be a liquid."""
+
 SI_UNIT: dict[Kind, str] = {
     Kind.TEMPERATURE: "K",
     Kind.TEMPERATURE_DIFFERENCE: "K",
@@ -47,6 +51,7 @@ SI_UNIT: dict[Kind, str] = {
     Kind.LENGTH: "m",
     Kind.AREA: "m2",
     Kind.VOLUME_FLOW: "m3/s",
+    Kind.LIQUID_FLOW: "m3/s",
     Kind.MASS_FLOW: "kg/s",
     Kind.CONDUCTANCE: "W/K",
     Kind.CURRENT: "A",

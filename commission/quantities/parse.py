@@ -59,6 +59,7 @@ _EXAMPLE: dict[Kind, str] = {
     Kind.MASS: "0.45 kg or 1.0 lb",
     Kind.VOLUME: "2.5 L or 60 US gal",
     Kind.VOLUME_FLOW: "1200 m3/h or 400 cfm",
+    Kind.LIQUID_FLOW: "1.5 m3/h or 7 gpm",
     Kind.RATIO: "65 %",
     Kind.ENERGY: "1.8 kWh",
     Kind.LENGTH: "2.8 m or 9 ft",

@@ -87,6 +87,20 @@ def _watts(kind: Kind) -> list[Unit]:
     ]
 
 
+def _flows(kind: Kind) -> list[Unit]:
+    """Units of volume flow, of air and of liquids: which unit a flow is written in is the writer's choice."""
+    return [
+        Unit("m3/h", kind, 1 / 3600, 0.0, None, ("m³/h", "m^3/h", "cmh", "m3/hr", "m³/hr")),
+        Unit("m3/s", kind, 1.0, 0.0, None, ("m³/s", "m^3/s")),
+        Unit("m3/min", kind, 1 / 60, 0.0, None, ("m³/min", "m^3/min")),
+        Unit("L/s", kind, 1e-3, 0.0, None, ("l/s", "lps")),
+        Unit("L/min", kind, 1e-3 / 60, 0.0, None, ("l/min", "lpm")),
+        Unit("L/h", kind, 1e-3 / 3600, 0.0, None, ("l/h", "lph")),
+        Unit("cfm", kind, FOOT**3 / 60, 0.0, None, ("CFM", "ft3/min", "ft³/min")),
+        Unit("gpm", kind, US_GALLON / 60, 0.0, None, ("GPM", "US gpm", "gal/min")),
+    ]
+
+
 UNITS: tuple[Unit, ...] = (
     Unit("°C", K.TEMPERATURE, 1.0, 273.15, None, ("C", "degC", "deg. C", "℃", "Celsius", "celsius", "degrees Celsius")),
     Unit(
@@ -187,14 +201,8 @@ UNITS: tuple[Unit, ...] = (
     Unit("in", K.LENGTH, INCH, 0.0, None, ("inch", "inches", "in.", '"')),
     Unit("m2", K.AREA, 1.0, 0.0, None, ("m²", "m^2", "sq m")),
     Unit("ft2", K.AREA, FOOT**2, 0.0, None, ("ft²", "ft^2", "sq ft", "sqft")),
-    Unit("m3/h", K.VOLUME_FLOW, 1 / 3600, 0.0, None, ("m³/h", "m^3/h", "cmh", "m3/hr", "m³/hr")),
-    Unit("m3/s", K.VOLUME_FLOW, 1.0, 0.0, None, ("m³/s", "m^3/s")),
-    Unit("m3/min", K.VOLUME_FLOW, 1 / 60, 0.0, None, ("m³/min", "m^3/min")),
-    Unit("L/s", K.VOLUME_FLOW, 1e-3, 0.0, None, ("l/s", "lps")),
-    Unit("L/min", K.VOLUME_FLOW, 1e-3 / 60, 0.0, None, ("l/min", "lpm")),
-    Unit("L/h", K.VOLUME_FLOW, 1e-3 / 3600, 0.0, None, ("l/h", "lph")),
-    Unit("cfm", K.VOLUME_FLOW, FOOT**3 / 60, 0.0, None, ("CFM", "ft3/min", "ft³/min")),
-    Unit("gpm", K.VOLUME_FLOW, US_GALLON / 60, 0.0, None, ("GPM", "US gpm", "gal/min")),
+    *_flows(K.VOLUME_FLOW),
+    *_flows(K.LIQUID_FLOW),
     Unit("kg/s", K.MASS_FLOW, 1.0),
     Unit("g/s", K.MASS_FLOW, 1e-3),
     Unit("kg/h", K.MASS_FLOW, 1 / 3600, 0.0, None, ("kg/hr",)),

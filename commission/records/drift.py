@@ -9,7 +9,7 @@ from importlib.resources import files
 from typing import Any
 
 from commission.description import LoadedPlant
-from commission.quantities import NOMENCLATURE, Display
+from commission.quantities import Display
 from commission.records.history import NOT_INDEPENDENT, Point, Series, history, series
 
 CONFIDENCE = 0.95
@@ -63,8 +63,7 @@ def drifts(loaded: LoadedPlant, system: str | None = None) -> tuple[Drift, ...]:
     """What has drifted at the latest visit of each system, or of one, by the frozen deviations."""
     records = history(loaded)
     systems = [system] if system is not None else list(loaded.plant.systems)
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
-    return tuple(d for s in systems for d in find_drifts(series(records, s), display))
+    return tuple(d for s in systems for d in find_drifts(series(records, s), loaded.display(s)))
 
 
 def find_drifts(found: Iterable[Series], display: Display) -> tuple[Drift, ...]:
@@ -142,7 +141,7 @@ def _repeated(one: Series) -> bool:
 def _drift(one: Series, point: Point, repeated: bool, display: Display) -> Drift:
     assert point.change is not None
     assert point.change_expanded is not None
-    quantity = NOMENCLATURE[one.quantity]
+    quantity = display.quantities[one.quantity]
     base = next(p for p in one.points if p.record == one.baseline)
     days = (point.started - base.started).days
     size = display.spread(abs(point.change), quantity.kind)

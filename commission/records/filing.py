@@ -16,7 +16,6 @@ from typing import TYPE_CHECKING, Any
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError, Problem
 from commission.errors import nearest as nearest_word
-from commission.quantities import Display
 from commission.records.disk import ExistsError, FolderError, copy_new, digest_of_file, lock, sweep, write_new
 from commission.records.filed import FORM, FiledRecord, FiledRecordError, read_filed, read_folder
 from commission.records.freeze import freeze, items_of_judgement, versions
@@ -205,7 +204,7 @@ def _judged(
     by_model = judge_or_reason(loaded, record, None, model)[0] if sheet is not None else None
     assumptions = {k: a.value for k, a in model.assumptions.items()} if model else {}
     frozen = freeze(loaded, record, judgement, reason, sheet, by_model, assumptions)
-    display = Display(loaded.plant.plant.units, record.barometric_pressure)
+    display = loaded.display(record.system, record.barometric_pressure)
     return frozen, items_of_judgement(record, judgement.guarantees if judgement else (), display)
 
 

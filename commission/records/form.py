@@ -52,7 +52,7 @@ def record_form(loaded: LoadedPlant, system: str, stage: str, model: SystemModel
     items = known_stages(loaded, system, stage)
     lines = _HEAD.format(name=" ".join(name.split()), system=system, stage=stage).splitlines()
     asked = _with_voltage(loaded, system, _asked(loaded, system, model))
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(system)
     axes = [k for k in NOMENCLATURE if model is not None and k in model.condition_axes]
     axes = axes or ["heat_source_inlet_temperature", "heat_sink_inlet_temperature"]
     named = loaded.system(system).measured_with
@@ -103,7 +103,7 @@ def _lines(
     asked: Sequence[tuple[str, str | None]], display: Display, three: bool, answered: Mapping[str | None, Item]
 ) -> Iterator[str]:
     for key, instrument in asked:
-        quantity = NOMENCLATURE[key]
+        quantity = display.quantities[key]
         unit = pretty(display.unit_and_digits(quantity.kind)[0])
         named = f", instrument: {instrument}" if instrument else ""
         value, how = "value: ", ""

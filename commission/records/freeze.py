@@ -41,7 +41,7 @@ def freeze(
 
     `reason` says why there is no judgement; `by_model` is the same visit against the model where a sheet was used.
     """
-    display = Display(loaded.plant.plant.units, record.barometric_pressure)
+    display = loaded.display(record.system, record.barometric_pressure)
     return {
         "verdict": (judgement.outcome if judgement else None) or "none",
         "sentence": sentence(record, judgement, reason, display),
@@ -92,8 +92,8 @@ def _why_nothing(judgement: Judgement) -> str:
 def guarantee_sentence(verdict: GuaranteeVerdict, display: Display) -> str:
     """One guarantee's verdict in words."""
     key = verdict.terms.quantity
-    kind = NOMENCLATURE[key].kind
-    said = f"{NOMENCLATURE[key].label}: {verdict.outcome}"
+    kind = display.kind(key)
+    said = f"{display.label(key)}: {verdict.outcome}"
     if verdict.measured is not None:
         said += f", {display.text(verdict.measured.value, kind)}"
         if verdict.budget is not None:

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant
-from commission.quantities import NOMENCLATURE, Display
 
 if TYPE_CHECKING:
     from commission.records.record import CheckedAnswer, SiteReading
@@ -43,7 +42,7 @@ def held(loaded: LoadedPlant, system: str, readings: Iterable[SiteReading]) -> d
     asked = [r for r in readings if r.key in _ASKED]
     if not asked:
         return {}
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(system)
     items = {i.id: i.do for stage in stages(loaded, system) for i in stage.items if i.left_out is None}
     found = {}
     for reading in asked:
@@ -65,7 +64,7 @@ def contradicted(
     for key, one in held(loaded, system, read.values()).items():
         answer = answers.get(one.item)
         if answer is not None and answer.outcome == "done" and not one.kept:
-            label = NOMENCLATURE[key].label.lower()
+            label = loaded.display(system).words(key)
             said.append(
                 f'"{one.act.rstrip(".")}" is answered {answer.answer!r}, but {label} was read as '
                 f"{read[key].as_written}: {one.text}"

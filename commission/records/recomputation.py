@@ -6,7 +6,6 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from commission.description import LoadedPlant, read_yaml
-from commission.quantities import NOMENCLATURE, Display
 from commission.records.filed import FiledRecord
 from commission.records.freeze import versions
 from commission.records.judge import judged_by
@@ -74,7 +73,7 @@ def _changes(loaded: LoadedPlant, filed: FiledRecord, judgement: Judgement, now:
     outcome = judgement.outcome or "none"
     if outcome != block.verdict:
         found.append(f"the verdict would be {outcome} instead of {block.verdict}")
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display(filed.system)
     before = block.model_deviations or block.deviations
     for deviation in judgement.deviations:
         then_frozen = before.get(deviation.key)
@@ -82,7 +81,7 @@ def _changes(loaded: LoadedPlant, filed: FiledRecord, judgement: Judgement, now:
             continue
         moved = deviation.deviation - then_frozen.deviation
         if abs(moved) > 0.1 * then_frozen.expanded:
-            quantity = NOMENCLATURE[deviation.key]
+            quantity = display.quantities[deviation.key]
             shown = f"{display.spread(moved, quantity.kind, 2)} {display.spread_unit(quantity.kind)}".rstrip()
-            found.append(f"the deviation of {quantity.label.lower()} would be other by {shown}")
+            found.append(f"the deviation of {quantity.words} would be other by {shown}")
     return found

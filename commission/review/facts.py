@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 from commission.description import LoadedPlant
 from commission.description.model import Conditions, RatedPoint, System
 from commission.errors import CommissionError
-from commission.quantities import NOMENCLATURE, Display, Explained, Kind, Pressure
+from commission.quantities import Display, Explained, Kind, Pressure
 from commission.review.finding import Figure, Severity
 from commission.review.thresholds import Threshold, thresholds, thresholds_of
 
@@ -30,7 +30,10 @@ COOLING_DUTIES = ("cold_storage", "comfort_cooling", "liquid_cooling")
 
 @dataclass(frozen=True, slots=True)
 class PlantFacts:
-    """The plant as loaded, how it shows numbers, the day of the visit where one is known, and the thresholds."""
+    """The plant as loaded, how it shows quantities, the day of the visit where one is known, and the thresholds.
+
+    As part of the facts of a system it shows quantities as those of that system.
+    """
 
     loaded: LoadedPlant
     display: Display
@@ -51,7 +54,7 @@ class PlantFacts:
 
     def quantity(self, key: str, value: float, label: str | None = None) -> Figure:
         """A figure of a quantity of the nomenclature, labelled with its own name unless said otherwise."""
-        return self.figure(label or NOMENCLATURE[key].label, value, NOMENCLATURE[key].kind)
+        return self.figure(label or self.display.label(key), value, self.display.kind(key))
 
     def threshold_figure(self, key: str, label: str) -> Figure:
         """A threshold as a figure."""
@@ -136,7 +139,7 @@ def explained_figure(plant: PlantFacts, explained: Explained, label: str | None 
     """A calculated value with its standard uncertainty where one is stated."""
     figure = plant.quantity(explained.quantity, explained.value, label)
     if explained.uncertainty:
-        kind = NOMENCLATURE[explained.quantity].kind
+        kind = plant.display.kind(explained.quantity)
         spread = f"{plant.display.spread(explained.uncertainty, kind)} {plant.display.spread_unit(kind)}".rstrip()
         figure = replace(figure, text=f"{figure.text} (standard uncertainty {spread})")
     return replace(figure, explained=explained)
@@ -155,7 +158,7 @@ def gather(
     Raises:
         ReviewFileError: the plant's own thresholds cannot be used.
     """
-    display = Display(loaded.plant.plant.units, loaded.barometric_pressure)
+    display = loaded.display()
     plant = PlantFacts(loaded, display, visit, thresholds_of(loaded.folder))
     return plant, tuple(
         _system_facts(plant, key, system, models.get(key)) for key, system in loaded.plant.systems.items()
@@ -166,6 +169,7 @@ def _system_facts(plant: PlantFacts, key: str, system: System, fitted: SystemMod
     from commission.prediction import fit
     from commission.properties import refrigerant
 
+    plant = replace(plant, display=plant.loaded.display(key))
     facts = SystemFacts(plant, key, system, None, None, None)
     try:
         facts = replace(facts, refrigerant=refrigerant(system.refrigerant))

@@ -155,7 +155,7 @@ def test_as_stated_compares_bulbs(model: SystemModel) -> None:
     assert near.budget.standard > 0.0
     humid = Measured(HUMIDITY, day_condition(model, bulbs(2.0, 1.0)).used[HUMIDITY].value)
     assert carry(terms, {DRY: Measured(DRY, 275.15), HUMIDITY: humid, **flow}, model).value == 7400.0
-    with pytest.raises(NotCalculatedError, match="heat source wet bulb of the day is another one"):
+    with pytest.raises(NotCalculatedError, match="outdoor air wet bulb of the day is another one"):
         carry(terms, {**bulbs(2.0, -0.5), **flow}, model)
 
 
@@ -210,7 +210,7 @@ def test_the_other_end_of_a_medium_is_enough(plant: LoadedPlant, model: SystemMo
     assert found.conditions[RETURN].value == full.measured[RETURN].value
     key = "condensing_temperature"
     assert found.expectations[key].value == pytest.approx(full.expectations[key].value, abs=0.02)
-    assert [w for w in found.warnings if "taken from heat sink inlet temperature" in w]
+    assert [w for w in found.warnings if "taken from heating water inlet temperature" in w]
     assert RETURN not in {d.key for d in found.deviations}
     neither, read = readings(plant, model, heat_sink_outlet_temperature=None, heat_sink_inlet_temperature=None)
     assert evaluate(plant, model, neither, read).deviations == ()
@@ -240,7 +240,7 @@ def test_before_the_visit_the_psychrometer_is_offered(plant: LoadedPlant, model:
 def test_a_liquid_source_knows_no_wet_bulb(chiller_model: SystemModel) -> None:
     """Water has no wet bulb: a guarantee that states one cannot be carried."""
     terms = replace(Terms("cooling_capacity", 38e3, {}), at={DRY: 285.15, WET: 284.15})
-    with pytest.raises(NotCalculatedError, match="does not depend on heat source wet bulb"):
+    with pytest.raises(NotCalculatedError, match="does not depend on chilled water wet bulb"):
         carry(terms, {DRY: Measured(DRY, 285.15)}, chiller_model)
 
 

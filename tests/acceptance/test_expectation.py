@@ -123,7 +123,7 @@ def test_without_an_inlet_temperature_nothing_is_expected(cold_room: LoadedPlant
     asked, read = visit(cold_room, cold_room_model, heat_sink_inlet_temperature=None)
     found = evaluate(cold_room, cold_room_model, asked, read)
     assert found.deviations == ()
-    assert "heat sink inlet temperature was not read" in found.not_judged["suction_pressure"]
+    assert "outdoor air inlet temperature was not read" in found.not_judged["suction_pressure"]
 
 
 def test_methods_are_in_the_table(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:

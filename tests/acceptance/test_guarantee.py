@@ -122,7 +122,7 @@ def test_table_is_never_left(chiller: LoadedPlant, chiller_model: SystemModel) -
         supplier_grid("cooling_capacity", system.rated_points[:3])
     with pytest.raises(NotCalculatedError, match="at least two rated points"):
         supplier_grid("cooling_capacity", system.rated_points[:1])
-    with pytest.raises(NotCalculatedError, match="at least two rated points that state heat to the sink"):
+    with pytest.raises(NotCalculatedError, match="at least two rated points that state heat to the heat sink"):
         supplier_grid("heating_capacity", system.rated_points)
 
 
@@ -138,7 +138,7 @@ def test_as_stated_only_near_the_stated_condition(chiller: LoadedPlant, chiller_
     near = carry(terms, day(303.45, 285.15, u=0.1), chiller_model)
     assert near.value == 4.3
     assert any("not quite as stated" in c.name for c in near.budget.components)
-    with pytest.raises(NotCalculatedError, match="heat sink inlet temperature of the day is another one"):
+    with pytest.raises(NotCalculatedError, match="condenser water inlet temperature of the day is another one"):
         carry(terms, day(306.15, 285.15, u=0.1), chiller_model)
-    with pytest.raises(NotCalculatedError, match="needs a reading of heat source inlet temperature"):
+    with pytest.raises(NotCalculatedError, match="needs a reading of chilled water inlet temperature"):
         carry(terms, {SINK: Measured(SINK, 303.15)}, chiller_model)

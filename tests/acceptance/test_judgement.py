@@ -12,7 +12,7 @@ import pytest
 from commission.acceptance import Judgement, Reading, carry, judge, make_sheet
 from commission.acceptance.budget import Budget, Measured
 from commission.acceptance.evaluation import _settled
-from commission.acceptance.judgement import coarse, decide_guarantee
+from commission.acceptance.judgement import apart, coarse, decide_guarantee
 from commission.description import LoadedPlant
 from commission.errors import NotCalculatedError
 from commission.prediction import SystemModel, fit
@@ -88,7 +88,7 @@ def test_unsteady_plant_withholds_the_verdict(chiller: LoadedPlant, chiller_mode
         for r in asked
     ]
     moved = judge(chiller, chiller_model, wandering, read, "test", on=DAY, since_start=3600.0)
-    assert "heat sink inlet temperature moved more" in (moved.guarantees[0].withheld or "")
+    assert "condenser water inlet temperature moved more" in (moved.guarantees[0].withheld or "")
 
 
 def test_refused_route_is_undecided_with_its_reason(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
@@ -133,10 +133,22 @@ def test_where_the_contract_is_silent_a_coarse_test_decides_and_is_named(
     carried = carry(silent, {}, cold_room_model)
     decision, budget = decide_guarantee(silent, agreed.measured, carried)
     assert decision.outcome == "conforming"
-    said = coarse(replace(agreed, terms=silent, decision=decision, budget=budget, guaranteed=carried.explained))
+    shown = cold_room_model.facts.shown
+    said = coarse(replace(agreed, terms=silent, decision=decision, budget=budget, guaranteed=carried.explained), shown)
     assert said is not None
-    assert f"probability of {100 * decision.probability_of_conformity:.0f} %" in said
-    assert coarse(agreed) is None
+    assert "(± 11 %) is coarser than the tolerance (5 %)" in said
+    assert coarse(agreed, shown) is None
+
+
+@pytest.mark.parametrize(
+    ("one", "other", "texts"),
+    [(0.05004, 0.05, ("5.004", "5.000")), (0.0504, 0.05, ("5.04", "5.00")), (0.083, 0.05, ("8", "5"))],
+)
+def test_shares_that_are_nearly_alike_keep_the_digits_that_differ(
+    one: float, other: float, texts: tuple[str, str]
+) -> None:
+    """A test of 5.04 % against a tolerance of 5 % is not said to be 5 % against 5 %."""
+    assert apart(one, other) == texts
 
 
 def test_expired_calibration_is_carried_along(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
@@ -276,7 +288,7 @@ def test_carbon_dioxide_above_its_critical_point(tmp_path: Path) -> None:
     outlet = [r for r in visit(plant, model)[0] if r.key != "heat_sink_outlet_temperature"]
     blind = judge(plant, model, outlet, visit(plant, model)[1], "trim", on=DAY)
     assert blind.deviations == ()
-    assert "heat sink outlet temperature was not read" in blind.not_judged["suction_pressure"]
+    assert "water outlet temperature was not read" in blind.not_judged["suction_pressure"]
 
 
 def test_what_the_conditions_settle_is_not_judged() -> None:

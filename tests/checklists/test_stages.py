@@ -69,7 +69,7 @@ def test_expected_readings_carry_their_band_and_condition(example_folder: Path) 
     assert item.must_read.value == pytest.approx(explained.value)
     assert item.must_read.high == pytest.approx(explained.value + 2 * explained.uncertainty)
     assert item.must_read.low == pytest.approx(explained.value - 2 * explained.uncertainty)
-    assert "outdoors" in item.must_read.text
+    assert "outdoor air" in item.must_read.text
 
 
 def test_another_day_gives_other_readings(example_folder: Path) -> None:
@@ -84,7 +84,7 @@ def test_another_day_gives_other_readings(example_folder: Path) -> None:
     assert found.value is not None
     assert rated.value is not None
     assert found.value < rated.value
-    assert "outdoors 20.0 °C" in found.text
+    assert "outdoor air 20.0 °C" in found.text
 
 
 def test_one_prediction_is_enough_for_its_own_condition(example_folder: Path) -> None:

@@ -7,8 +7,8 @@ import pytest
 from commission.errors import NotCalculatedError
 from commission.machine import Compressor, EfficiencyShape
 from commission.properties import refrigerant
+from tests.machine.conftest import RECIPROCATING
 
-RECIPROCATING = EfficiencyShape(0.04, 1.1, 0.006, 0.15, 0.08)
 SCROLL = EfficiencyShape(0.0, 1.1, 0.025, 0.10, 0.08, 2.7)
 
 

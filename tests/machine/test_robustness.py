@@ -9,7 +9,6 @@ import pytest
 from commission.errors import NotCalculatedError
 from commission.machine import (
     Compressor,
-    EfficiencyShape,
     Exchanger,
     Media,
     OperatingPoint,
@@ -19,8 +18,7 @@ from commission.machine import (
     air_stream,
 )
 from commission.properties import PropertyRangeError, Refrigerant, refrigerant, register
-
-SHAPE = EfficiencyShape(0.04, 1.1, 0.006, 0.15, 0.08)
+from tests.machine.conftest import RECIPROCATING
 
 
 def _names() -> list[str]:
@@ -45,7 +43,7 @@ def _random_point(fluid: Refrigerant, rng: random.Random) -> OperatingPoint | No
     cold = max(source - 8.0, fluid.T_triple + 5.0)
     effect = fluid.dew(cold).h - fluid.bubble(min(sink + 12.0, 0.9 * fluid.T_critical)).h
     swept = 5000.0 / (fluid.dew(cold).rho * effect * 0.8) * rng.uniform(0.6, 1.3)
-    compressor = Compressor(swept, 0.95, 0.9, SHAPE, 0.05)
+    compressor = Compressor(swept, 0.95, 0.9, RECIPROCATING, 0.05)
     evaporator = Exchanger(700.0 * rng.uniform(0.5, 2.0), 0.6, 0.5, 0.75)
     condenser = Exchanger(600.0 * rng.uniform(0.8, 2.0), 0.8, 0.5)
     line = SuctionLine(1.0, warming=3.0)

@@ -13,7 +13,6 @@ import pytest
 from commission.errors import NotCalculatedError
 from commission.machine import (
     Compressor,
-    EfficiencyShape,
     Exchanger,
     Media,
     SingleStage,
@@ -24,10 +23,10 @@ from commission.machine import (
     within_reach,
 )
 from commission.properties import liquid, refrigerant
+from tests.machine.conftest import RECIPROCATING
 
 Make = Callable[..., SingleStage]
 Conditions = Callable[[float, float], Media]
-SHAPE = EfficiencyShape(0.04, 1.1, 0.006, 0.15, 0.08)
 
 
 def test_a_setting_is_held_where_there_is_room_and_gives_way_smoothly() -> None:
@@ -106,7 +105,7 @@ def test_any_size_of_exchanger_keeps_the_second_law(name: str) -> None:
         effect = fluid.dew(source - 8).h - fluid.bubble(sink + 12).h
         swept = 5000.0 / (fluid.dew(source - 8).rho * effect * 0.8) * rng.choice([0.1, 0.2, 0.4, 1.0, 1.5])
         machine = SingleStage(
-            fluid, Compressor(swept, 0.95, 0.9, SHAPE, 0.05),
+            fluid, Compressor(swept, 0.95, 0.9, RECIPROCATING, 0.05),
             Exchanger(700 * rng.uniform(0.5, 4), 0.6, 0.5, rng.choice([None, 0.75]), rng.choice([0.1, 0.25, 0.5])),
             Exchanger(600 * rng.uniform(0.8, 3), 0.8, 0.5), rng.uniform(2, 10), math.inf, SuctionLine(1.0, warming=2.0),
             0.4, subcooling_share=rng.uniform(0.1, 0.85),

@@ -10,7 +10,7 @@ import pytest
 from commission.description import load_plant
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.heating_up import heating_ups
-from commission.manual.page_display import PageDisplay
+from commission.manual.page_display import page_display
 from commission.manual.visit_pages import _not_judged
 from commission.prediction import heat_up
 from commission.records import FiledBlock
@@ -24,8 +24,19 @@ def water(example_folder: Path) -> tuple[PlantData, SystemData]:
     loaded = load_plant(example_folder)
     system = loaded.system("shower-water")
     model = fit(loaded, "shower-water")
-    data = SystemData("shower-water", "shower-water", system, model, None, None, model.assumptions, None, {})
-    return PlantData(loaded, PageDisplay("metric", loaded.barometric_pressure), (data,)), data
+    data = SystemData(
+        "shower-water",
+        "shower-water",
+        system,
+        model,
+        None,
+        None,
+        model.assumptions,
+        None,
+        {},
+        page_display(loaded, "shower-water"),
+    )
+    return PlantData(loaded, page_display(loaded), (data,)), data
 
 
 def test_rows_are_what_the_prediction_says(water: tuple[PlantData, SystemData]) -> None:

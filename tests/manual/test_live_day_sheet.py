@@ -15,7 +15,7 @@ from commission.description import LoadedPlant, load_plant
 from commission.manual.live_bands import work_through
 from commission.manual.live_data import as_script, kind_data, saturation_rows
 from commission.manual.live_plan import DERIVED
-from commission.manual.live_sheet import in_sentence, live_sheet
+from commission.manual.live_sheet import live_sheet
 from commission.manual.store import FolderStore
 from commission.properties import refrigerant
 from commission.quantities import Display, Kind
@@ -132,12 +132,6 @@ def test_no_sign_of_the_data_ends_the_element_that_holds_it() -> None:
     text = str(as_script(wild))
     assert not re.search("[<>&\u2028]", text)
     assert json.loads(text) == wild
-
-
-def test_labels_keep_their_abbreviations_in_a_sentence() -> None:
-    """Only a word gets a small letter."""
-    assert in_sentence("COP of cooling") == "COP of cooling"
-    assert in_sentence("Heat to the sink") == "heat to the sink"
 
 
 @pytest.mark.parametrize("system", ["cold-room", pytest.param("dining-hall", marks=pytest.mark.long)])

@@ -24,8 +24,10 @@ TEMPLATES = Path(__file__).parents[2] / "site_templates"
 def _cards(folder: Path) -> str:
     """The body of the page with a card for each system; no card needs a calculation."""
     loaded = load_plant(folder)
-    systems = tuple(SystemData(i, i, s, None, None, None, {}, None, {}) for i, s in loaded.plant.systems.items())
     display = Display("metric", loaded.barometric_pressure)
+    systems = tuple(
+        SystemData(i, i, s, None, None, None, {}, None, {}, display) for i, s in loaded.plant.systems.items()
+    )
     book = Book()
     sheet = emergency_page(PlantData(loaded, display, systems))
     book.add(sheet)

@@ -12,7 +12,7 @@ from commission.manual.grid import outdoor_axis
     ("outdoors", "key", "title"),
     [
         ("yes", "heat_source_inlet_temperature", "Outdoor air"),
-        ("no", "heat_source_inlet_temperature", "Heat source inlet"),
+        ("no", "heat_source_inlet_temperature", "Air of Place of the heat pump inlet"),
     ],
 )
 def test_headings_add_the_word_temperature_once(tmp_path: Path, outdoors: str, key: str, title: str) -> None:
@@ -22,4 +22,5 @@ def test_headings_add_the_word_temperature_once(tmp_path: Path, outdoors: str, k
         path.read_text(encoding="utf-8").replace("outdoors: yes", f"outdoors: {outdoors}"), encoding="utf-8"
     )
     loaded = load_plant(path.parent)
-    assert outdoor_axis(loaded, loaded.system("heat-pump")) == (key, title)
+    assert outdoor_axis(loaded, loaded.system("heat-pump")) == key
+    assert loaded.display("heat-pump").short(key) == title

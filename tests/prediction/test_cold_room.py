@@ -140,4 +140,4 @@ def test_a_condition_without_balance_is_not_calculated(cold_room: SystemModel) -
     """Where no balance exists, the reason and the nearest condition that has one stand instead of a number."""
     with pytest.raises(NotCalculatedError) as caught:
         cold_room.predict({"heat_sink_inlet_temperature": 95 + C})
-    assert "coming from the rated condition it still runs at heat sink inlet temperature" in str(caught.value)
+    assert "coming from the rated condition it still runs at outdoor air inlet temperature" in str(caught.value)

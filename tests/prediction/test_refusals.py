@@ -28,9 +28,9 @@ def models(example: LoadedPlant) -> dict[str, SystemModel]:
         ("shower-water", {SOURCE: KELVIN + 60}, "the source is so warm that evaporation would come to the critical"),
         ("cold-room", {"heat_sink_flow": 1e-4}, "the sink takes up so little heat that condensing would come to"),
         ("freezer-room", {SINK: KELVIN + 65}, "the compressed gas would be hotter than 146.2 °C"),
-        ("cold-room", {"heat_source_flow": -0.1}, "a heat source flow of −360 m³/h cannot be"),
-        ("cold-room", {"heat_source_relative_humidity": 1.2}, "a heat source relative humidity of 120 % cannot be"),
-        ("floor-heating", {OUTLET: KELVIN - 3}, "a heat sink outlet temperature of −3.0 °C cannot be: liquid water"),
+        ("cold-room", {"heat_source_flow": -0.1}, "room air flow of −360 m³/h cannot be"),
+        ("cold-room", {"heat_source_relative_humidity": 1.2}, "room air relative humidity of 120 % cannot be"),
+        ("floor-heating", {OUTLET: KELVIN - 3}, "heating water outlet temperature of −3.0 °C cannot be: liquid water"),
         ("shower-water", {SINK: KELVIN + 40, OUTLET: KELVIN + 35}, "heat goes into the sink"),
     ],
 )
@@ -48,7 +48,7 @@ def test_the_nearest_condition_runs(models: dict[str, SystemModel]) -> None:
     model = models["freezer-room"]
     with pytest.raises(NotCalculatedError) as caught:
         model.predict({SINK: KELVIN + 70})
-    named = re.search(r"still runs at heat sink inlet temperature ([\d.]+) °C", str(caught.value))
+    named = re.search(r"still runs at outdoor air inlet temperature ([\d.]+) °C", str(caught.value))
     assert named is not None
     edge = KELVIN + float(named.group(1))
     (inside, beyond) = model.nominal([{SINK: edge - 0.1}, {SINK: edge + 0.5}])

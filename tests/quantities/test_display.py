@@ -1,10 +1,22 @@
 """Numbers are shown in the reader's units, and read back to what they were."""
 
+import re
+
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from commission.quantities import NOMENCLATURE, SI_UNIT, Display, Kind, json_value, parse, parse_pressure
+from commission.quantities import (
+    NOMENCLATURE,
+    SI_UNIT,
+    Display,
+    Kind,
+    MediumName,
+    json_value,
+    nomenclature,
+    parse,
+    parse_pressure,
+)
 
 BAROMETER = 97_656.0
 SHOWN = {"m³": "m3", "m²": "m2", "ft³": "ft3", "ft²": "ft2"}
@@ -89,3 +101,30 @@ def test_a_small_volume_flow_keeps_its_figures() -> None:
     assert display.spread(3e-3 / 3600, Kind.VOLUME_FLOW) == "0.003"
     assert display.text(4200 / 3600, Kind.VOLUME_FLOW) == "4200 m³/h"
     assert display.spread(40 / 3600, Kind.VOLUME_FLOW) == "40"
+
+
+def test_names_of_media_stand_in_every_label_and_definition() -> None:
+    """The table of one system calls its media by name, keeps keys, and its words keep their abbreviations."""
+    named = nomenclature(MediumName("room air"), MediumName("condenser water", liquid=True))
+    assert list(named) == list(NOMENCLATURE)
+    for quantity in named.values():
+        assert not re.search(r"heat (source|sink)|the s(ource|ink)", f"{quantity.label} {quantity.definition}")
+    display = Display("us_customary", BAROMETER, named)
+    assert display.label("evaporator_temperature_difference") == "Room air inlet minus evaporating"
+    assert display.words("heating_capacity") == "heat to the condenser water"
+    assert display.words("cooling_cop") == "COP of cooling"
+    assert display.words("carnot_cop") == "Carnot COP"
+    assert display.short("heat_source_inlet_temperature") == "Room air"
+    assert display.short("heat_sink_outlet_temperature") == "Condenser water outlet"
+    assert display.medium("heat_sink") == "Condenser water"
+
+
+def test_a_liquid_flows_in_gallons_where_air_flows_in_cubic_feet() -> None:
+    """24.2 gpm of water is not shown as 3.24 cfm; 1 US gallon is 231 cubic inches, 1 cfm is 7.48 gpm."""
+    named = nomenclature(MediumName("chilled water", liquid=True), MediumName("outdoor air"))
+    display = Display("us_customary", BAROMETER, named)
+    flow = parse("24.2 gpm", Kind.VOLUME_FLOW)
+    assert display.of("heat_source_flow", flow) == "24.2 gpm"
+    assert display.of("heat_sink_flow", flow) == "3.24 cfm"
+    assert Display("metric", BAROMETER, named).of("heat_source_flow", flow) == "5.50 m³/h"
+    assert parse("24.2 gpm", Kind.LIQUID_FLOW) == flow

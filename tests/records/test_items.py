@@ -166,4 +166,4 @@ def test_a_trim_with_nothing_to_compare_says_why(loaded: LoadedPlant, write: Wri
         ("  heat_source_inlet_temperature: {value: 2.4 °C, instrument: air probe, where: air on the cooler}\n", ""),
     )
     said = read_filed(file_record(loaded, path)).filed.sentence
-    assert said.startswith("trim, no verdict, and nothing to compare: heat source inlet temperature was not read")
+    assert said.startswith("trim, no verdict, and nothing to compare: room air inlet temperature was not read")

@@ -12,7 +12,7 @@ import yaml
 
 from commission.description import LoadedPlant, load_plant
 from commission.properties import refrigerant
-from commission.quantities import NOMENCLATURE, Display, Explained
+from commission.quantities import NOMENCLATURE, Explained
 from commission.review.facts import Outlook, PlantFacts, SystemFacts
 
 BASE = """
@@ -102,7 +102,7 @@ def facts(make_plant: Callable[..., LoadedPlant]) -> Callable[..., SystemFacts]:
         **parts: Any,
     ) -> SystemFacts:
         loaded = make_plant(system, **parts)
-        plant = PlantFacts(loaded, Display(loaded.plant.plant.units, loaded.barometric_pressure), None)
+        plant = PlantFacts(loaded, loaded.display("one"), None)
         one = loaded.plant.systems["one"]
         names = {"design": "at the design condition", "hottest": "on the hottest day", "coldest": "on the coldest day"}
         outlooks = {

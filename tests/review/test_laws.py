@@ -141,7 +141,7 @@ def test_media_must_change_the_right_way(facts: Facts) -> None:
               "heat_sink_inlet_temperature": "32 °C", "heat_sink_outlet_temperature": "30 °C"}  # fmt: skip
     found = list(media.wrong_way(facts({"design": design})))
     assert [remark.severity for remark in found] == ["error", "error"]
-    assert figure(found[0], "Heat source outlet temperature").value == pytest.approx(279.15)
+    assert figure(found[0], "Room air outlet temperature").value == pytest.approx(279.15)
     right = {**design, "heat_source_outlet_temperature": "1 °C", "heat_sink_outlet_temperature": "38 °C"}
     assert not list(media.wrong_way(facts({"design": right})))
 
@@ -190,7 +190,7 @@ def test_an_evaporative_condenser_is_held_to_the_wet_bulb(facts: Facts, condensi
     found = list(exchangers.condenser_crosses(facts(system)))
     assert [remark.severity for remark in found] == (["error"] if fires else [])
     if fires:
-        assert figure(found[0], "Heat sink wet bulb").text == "22.0 °C"
+        assert figure(found[0], "Outdoor air wet bulb").text == "22.0 °C"
 
 
 @pytest.mark.parametrize(
@@ -209,7 +209,7 @@ def test_expected_readings_may_not_cross(facts: Facts, outlet: float, evaporatin
     if fires:
         shown = {f.label: f.value for f in found[0].figures}
         if outlet > 60:
-            assert shown["Heat sink outlet temperature"] == pytest.approx(outlet + 273.15)
+            assert shown["Outdoor air outlet temperature"] == pytest.approx(outlet + 273.15)
         else:
             assert shown["Evaporating temperature"] == pytest.approx(evaporating + 273.15)
 
@@ -264,5 +264,5 @@ def test_heat_given_to_another_room_is_worth_a_note(facts: Facts) -> None:
     expected = {"design": {"heating_capacity": (4900.0, 100.0)}}
     (remark,) = placement.warms_a_room(facts({"heat_sink": {"space": "plant room"}}, expected=expected, spaces=rooms))
     assert remark.severity == "note"
-    assert figure(remark, "Heat to the sink").value == pytest.approx(4900)
+    assert figure(remark, "Heat to the air of plant room").value == pytest.approx(4900)
     assert not list(placement.warms_a_room(facts(expected=expected)))

@@ -9,6 +9,7 @@ from pydantic import Field
 from commission.description.fields import (
     Duration,
     HeatFlow,
+    LiquidFlow,
     Power,
     PressureDifference,
     Ratio,
@@ -58,7 +59,7 @@ class Circulation(Part):
     """A circulation loop that keeps the hot-water pipes warm."""
 
     return_temperature: Temperature | None = Field(None, description="temperature at which the water comes back")
-    flow: VolumeFlow | None = Field(None, description="flow of the loop")
+    flow: LiquidFlow | None = Field(None, description="flow of the loop")
     heat_loss: HeatFlow | None = Field(None, description="heat that the loop loses while it runs")
     hours_per_day: Duration | None = Field(None, description="running time in a day")
     enters_at: Ratio | None = Field(None, description="height at which it enters the store: 0 % bottom, 100 % top")

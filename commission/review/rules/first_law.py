@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from commission.description.model import RatedPoint
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import Kind
 from commission.review.facts import SystemFacts
 from commission.review.finding import Figure, Remark, Severity
 
@@ -92,7 +92,7 @@ def medium_balance(facts: SystemFacts) -> Iterator[Remark]:
                 severity,
                 facts.path("rated_points", index, key),
                 f"Rated point {index + 1} of {facts.title}: flow and temperatures of the {medium.medium} carry "
-                f"{'more' if carried > stated else 'less'} heat than the stated {NOMENCLATURE[key].label.lower()}.",
+                f"{'more' if carried > stated else 'less'} heat than the stated {facts.plant.display.words(key)}.",
                 _stream_figures(facts, side, key, stated, carried, inlet, outlet, flow),
                 "Check flow, both temperatures and the capacity of this point against the supplier's sheet.",
             )

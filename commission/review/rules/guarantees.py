@@ -78,7 +78,7 @@ def cannot_be_carried(facts: SystemFacts) -> Iterator[Remark]:
                 "error",
                 facts.path("guarantee", index, "carried_by"),
                 f"Guarantee {index + 1} of {facts.title} is to be carried along the supplier's table, but no table of "
-                f"{NOMENCLATURE[guarantee.quantity].label.lower()} is written.",
+                f"{facts.plant.display.words(guarantee.quantity)} is written.",
                 (Figure("rated points that state it", str(len(known)), float(len(known)), Kind.NUMBER),),
                 "Write the supplier's table under rated_points, or agree on another way to carry the value.",
             )

@@ -80,7 +80,7 @@ def _off_scale(
     return Remark(
         facts.severity(outlook, "error" if overloaded else "warning"),
         facts.path("measured_with", key) if chosen else "instruments",
-        f"{who} the expected {NOMENCLATURE[key].label.lower()} of {facts.title}.",
+        f"{who} the expected {facts.plant.display.words(key)} of {facts.title}.",
         tuple(figures),
         "Bring an instrument whose scale holds the reading, with room above it for the trip of the limiter.",
     )

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 
-from commission.quantities import NOMENCLATURE, Kind
+from commission.quantities import Kind
 from commission.review.facts import PlantFacts, SystemFacts
 from commission.review.finding import Figure, Remark
 
@@ -50,9 +50,9 @@ def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
     for moved, part in parts.items():
         size = abs(part.get(key, 0.0))
         if size > 0.1 * math.hypot(*part.values()) and moved in outlook.prediction.expected:
-            moved_kind = NOMENCLATURE[moved].kind
+            moved_kind = show.kind(moved)
             text = f"± {show.spread(size, moved_kind)} {show.spread_unit(moved_kind)}".rstrip()
-            figures.append(Figure(f"it moves {NOMENCLATURE[moved].label.lower()} by", text, size, moved_kind))
+            figures.append(Figure(f"it moves {show.words(moved)} by", text, size, moved_kind))
     yield Remark(
         "note",
         facts.path(),

@@ -71,7 +71,7 @@ def same_condition_other_value(facts: SystemFacts) -> Iterator[Remark]:
                     other.path,
                     f"{one.name.capitalize()} and {other.name} of {facts.title} differ at one condition.",
                     tuple(
-                        facts.plant.quantity(key, row.results[key], f"{NOMENCLATURE[key].label}, {row.name}")
+                        facts.plant.quantity(key, row.results[key], f"{facts.plant.display.label(key)}, {row.name}")
                         for key in differing
                         for row in (one, other)
                     ),
@@ -148,7 +148,7 @@ def _cop_figures(facts: SystemFacts, key: str, easy: Row, hard: Row) -> tuple[Fi
     figures.append(facts.plant.quantity(cop, easy_cop, f"COP of {easy.name}"))
     for temperature in (*COLD_KEYS, *WARM_KEYS):
         if temperature in easy.conditions:
-            label = NOMENCLATURE[temperature].label
+            label = facts.plant.display.label(temperature)
             figures.append(facts.plant.quantity(temperature, hard.conditions[temperature], f"{label}, {hard.name}"))
             figures.append(facts.plant.quantity(temperature, easy.conditions[temperature], f"{label}, {easy.name}"))
     return tuple(figures)
@@ -246,6 +246,6 @@ def _missed(facts: SystemFacts, key: str, point: RatedPoint, expected: Mapping[s
     else:
         allowed = facts.plant.limit("rated_scatter") * stated
     if abs(nearest_value - stated) > allowed:
-        label = NOMENCLATURE[key].label
+        label = facts.plant.display.label(key)
         yield facts.plant.quantity(key, stated, f"{label}, stated")
         yield facts.plant.quantity(key, nearest_value, f"{label}, by the model")
