@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from itertools import islice
 from pathlib import Path
@@ -16,7 +16,7 @@ from commission.description.checking import bounded, validate
 from commission.description.looked import Looked
 from commission.description.meaning import problems_of_meaning
 from commission.description.model import Plant, System
-from commission.description.naming import medium_name
+from commission.description.naming import SIDES, medium_name
 from commission.description.positions import DescriptionError, KeyPath, Position, Positions
 from commission.errors import InputError, Problem, nearest
 from commission.quantities import Display, Pressure, Quantity, nomenclature
@@ -83,8 +83,14 @@ class LoadedPlant:
         return register({n: {k: f.model_dump(exclude_none=True) for k, f in of.items()} for n, of in own.items()})
 
     def assumptions(self, identity: str) -> Mapping[str, Assumption]:
-        """The assumption list of one system, own values with their place in the description."""
-        return assumptions_for(self.system(identity), self.positions, ("systems", identity))
+        """The assumption list of one system, own values with their place in the description; titles name its media."""
+        found = assumptions_for(self.system(identity), self.positions, ("systems", identity))
+        shown = self.display(identity)
+        for side in SIDES:
+            role, medium = side.replace("_", " "), shown.medium(side)
+            medium = medium[:1].lower() + medium[1:]
+            found = {k: replace(a, title=a.title.replace(role, medium)) for k, a in found.items()}
+        return found
 
     def quantities(self, identity: str) -> Mapping[str, Quantity]:
         """The nomenclature of one system: labels and definitions call its media as people on site do."""

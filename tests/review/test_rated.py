@@ -120,7 +120,7 @@ def test_an_outlet_that_the_model_does_not_give_back(facts: Facts) -> None:
         predict=lambda _: SimpleNamespace(expected={outlet.quantity: outlet}), condition_axes=dict.fromkeys(AT)
     )
     (remark,) = rated.not_reproduced(replace(facts({"rated_points": [point]}), model=model))
-    assert figure(remark, "Heat sink outlet temperature, by the model").text == "15.0 °C"
+    assert figure(remark, "Outdoor air outlet temperature, by the model").text == "15.0 °C"
 
 
 def test_a_compressor_table_is_held_to_carnot_and_to_efficiencies(facts: Facts) -> None:
