@@ -92,7 +92,7 @@ def circulation_does_not_balance(facts: SystemFacts) -> Iterator[Remark]:
         (
             plant.figure("set point of the store", store.set_point, Kind.TEMPERATURE),
             plant.figure("return", loop.return_temperature, Kind.TEMPERATURE),
-            plant.figure("flow of the loop", loop.flow, Kind.VOLUME_FLOW),
+            plant.figure("flow of the loop", loop.flow, Kind.LIQUID_FLOW),
             plant.figure("heat that this flow gives up between the two", carried, Kind.HEAT_FLOW),
             plant.figure("heat loss of the loop as written", loop.heat_loss, Kind.HEAT_FLOW),
         ),
