@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.manual import plant_pages, safety_pages, system_pages
+from commission.manual.archive import Archive, open_lines, read_archive, series_of, visits
 from commission.manual.before_visit import before_the_visit
 from commission.manual.book import Book, OwnerFile
 from commission.manual.checklist_pages import checklist_page
@@ -17,16 +18,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_sheet import live_sheet
 from commission.manual.paper import paper_style
 from commission.manual.plots import Figure, charts, draw, history_figures, ph_figure
-from commission.manual.records_pages import (
-    ITEMS,
-    Archive,
-    open_items_page,
-    open_lines,
-    read_archive,
-    records_page,
-    series_of,
-    visits,
-)
+from commission.manual.records_pages import ITEMS, open_items_page, records_page
 from commission.manual.saturation import saturation_page
 from commission.manual.sheet_pages import test_sheets
 from commission.manual.single import KINDS, single_path

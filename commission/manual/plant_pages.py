@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
+from commission.manual.archive import OpenLine
 from commission.manual.book import Sheet, slug
 from commission.manual.documents import DocumentLink
 from commission.manual.facts import DUTY_WORDS, Fact
@@ -12,17 +13,6 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.states import Next, Standing, Step, has_faults, most_urgent, next_step, steps, where_they_stand
 from commission.manual.upkeep_pages import PAGE, NextDuty
 from commission.quantities import NOMENCLATURE, Display, Kind, methods
-
-
-@dataclass(frozen=True, slots=True)
-class OpenLine:
-    """One open item in a line of the front page; `due` is a date as text, or None."""
-
-    number: int
-    what: str
-    system: str
-    who: str | None
-    due: str | None
 
 
 @dataclass(frozen=True, slots=True)

@@ -12,7 +12,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.showing import sourced
 
 if TYPE_CHECKING:
-    from commission.manual.records_pages import Archive
+    from commission.manual.archive import Archive
     from commission.upkeep import Duty
 
 CALENDAR = "upkeep.ics"

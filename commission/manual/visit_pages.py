@@ -5,11 +5,12 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 from commission.errors import CommissionError
+from commission.manual.archive import Archive, title_of, when
 from commission.manual.book import Sheet, slug
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.heating_up import HeatingUps, heating_ups
 from commission.manual.page_display import page_display
-from commission.manual.records_pages import VERDICT_CLASS, Archive, signed, title_of, when
+from commission.manual.records_pages import VERDICT_CLASS, signed
 from commission.manual.showing import unit_of
 from commission.quantities import NOMENCLATURE, Display, Kind
 

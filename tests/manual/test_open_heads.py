@@ -8,7 +8,8 @@ from typing import Literal
 
 import pytest
 
-from commission.manual.records_pages import Archive, open_lines
+from commission.manual.archive import Archive, open_lines
+from commission.quantities import Display
 from commission.records import OpenItem, RecordsFolder
 
 LONG = "which goes on for so long that no line of a front page would hold all of its many words at once"
@@ -31,5 +32,6 @@ def test_a_long_item_is_named_by_its_verdict_or_its_line(
         1, "store", what, raised_by, "2026-05-14-store-visit", dt.date(2026, 5, 14), line="condensing_temperature"
     )
     archive = Archive(RecordsFolder((), (), ()), (item,), {}, {}, (), {})
-    (line,) = open_lines(SimpleNamespace(systems=()), archive)  # type: ignore[arg-type]  # only its systems are asked
+    plant = SimpleNamespace(systems=(), display=Display("metric", 1e5))
+    (line,) = open_lines(plant, archive)  # type: ignore[arg-type]  # only its systems and its display are asked
     assert line.what == head

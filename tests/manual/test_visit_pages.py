@@ -12,9 +12,9 @@ import pytest
 
 from commission.acceptance.judgement import decide
 from commission.description import load_plant
+from commission.manual.archive import Archive, read_archive
 from commission.manual.book import Sheet
 from commission.manual.gather import gather_one
-from commission.manual.records_pages import Archive, read_archive
 from commission.manual.rendering import environment, render_body
 from commission.manual.single import LoneBook
 from commission.manual.visit_pages import _share_sure, certificates, record_page

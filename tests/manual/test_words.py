@@ -11,6 +11,7 @@ import pytest
 
 from commission.description import Assumption
 from commission.manual import search
+from commission.manual.archive import OpenLine
 from commission.manual.assumed import shown_assumptions
 from commission.manual.book import Book, Sheet, slug, slugs
 from commission.manual.facts import stated_number
@@ -18,7 +19,7 @@ from commission.manual.figures import Chart, Line, by_night, draw_chart
 from commission.manual.figures.style import FIRST, INK
 from commission.manual.page_display import PageDisplay
 from commission.manual.paper import css_string
-from commission.manual.plant_pages import OpenLine, by_date
+from commission.manual.plant_pages import by_date
 from commission.manual.saturation import table_temperatures
 from commission.manual.showing import band_text, grouped, show, show_input, sourced, spread_text
 from commission.manual.states import (
