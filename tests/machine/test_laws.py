@@ -11,7 +11,7 @@ import pytest
 
 from commission.errors import NotCalculatedError
 from commission.machine import HELD, HeadPressure, Media, SingleStage, carnot_cooling, entropic_mean
-from commission.machine.head_pressure import heat_per_kelvin
+from commission.machine.head_pressure import By, heat_per_kelvin
 from commission.properties import refrigerant
 
 Make = Callable[..., SingleStage]
@@ -83,9 +83,9 @@ def test_start_changes_the_work_not_the_answer(real: Make, cold_room_media: Cond
 
 
 @pytest.mark.parametrize("by", ["fan speed", "fan cycling", "condenser flooding", "water valve"])
-def test_head_pressure_takes_over_without_a_jump(real: Make, cold_room_media: Conditions, by: str) -> None:
+def test_head_pressure_takes_over_without_a_jump(real: Make, cold_room_media: Conditions, by: By) -> None:
     """Where head pressure begins to be held all is continuous, and below it the setting is kept."""
-    machine = real(head_pressure=HeadPressure(by, 301.15))  # type: ignore[arg-type]  # names of the parameter list
+    machine = real(head_pressure=HeadPressure(by, 301.15))
     low, high = 0.0, 40.0
     for _ in range(50):
         middle = 0.5 * (low + high)

@@ -7,7 +7,7 @@ import shutil
 from collections.abc import Callable, Iterator
 from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
 import pytest
 
@@ -18,6 +18,9 @@ from tests.manual.plants import file_visits, write_hostile_plant
 if TYPE_CHECKING:
     from playwright.sync_api import Browser, BrowserContext
 
+    from commission.description import LoadedPlant
+    from commission.prediction import SystemModel
+
 
 @pytest.fixture(scope="session", autouse=True)
 def _one_fit_for_each_description() -> Iterator[None]:
@@ -25,12 +28,12 @@ def _one_fit_for_each_description() -> Iterator[None]:
     import commission.prediction
 
     fit = commission.prediction.fit
-    fitted: dict[tuple[str, str], object] = {}
+    fitted: dict[tuple[str, str], SystemModel] = {}
 
-    def once(loaded: object, system: str) -> object:
-        key = (loaded.digest, system)  # type: ignore[attr-defined]  # a LoadedPlant
+    def once(loaded: LoadedPlant, system: str) -> SystemModel:
+        key = (loaded.digest, system)
         if key not in fitted:
-            fitted[key] = remembering(fit(loaded, system))  # type: ignore[arg-type]  # a LoadedPlant
+            fitted[key] = remembering(fit(loaded, system))
         return fitted[key]
 
     with pytest.MonkeyPatch.context() as patch:
@@ -108,10 +111,10 @@ def look(browser: Browser) -> Iterator[Callable[..., BrowserContext]]:
     """Opens windows that are closed at the end: `look(width, height, scheme)`."""
     contexts: list[BrowserContext] = []
 
-    def open_window(width: int = 820, height: int = 1180, scheme: str = "light") -> BrowserContext:
+    def open_window(width: int = 820, height: int = 1180, scheme: Literal["light", "dark"] = "light") -> BrowserContext:
         context = browser.new_context(
             viewport={"width": width, "height": height},
-            color_scheme=scheme,  # type: ignore[arg-type]  # light or dark
+            color_scheme=scheme,
         )
         contexts.append(context)
         return context

@@ -14,7 +14,7 @@ import pytest
 from commission.manual import BuildResult
 
 if TYPE_CHECKING:
-    from playwright.sync_api import BrowserContext, Page
+    from playwright.sync_api import Browser, BrowserContext, Page
 
 Look = Callable[..., "BrowserContext"]
 SYSTEM = "systems/cold-room"
@@ -168,9 +168,9 @@ def test_a_row_opens_to_its_workings_by_keyboard(look: Look, site: Path) -> None
     assert page.evaluate("document.getElementById('row-superheat').open")
 
 
-def test_works_without_scripts(browser: object, site: Path) -> None:
+def test_works_without_scripts(browser: Browser, site: Path) -> None:
     """With scripts off, the list of pages is there and rows still open."""
-    context = browser.new_context(java_script_enabled=False)  # type: ignore[attr-defined]  # the browser fixture
+    context = browser.new_context(java_script_enabled=False)
     page = context.new_page()
     page.goto((site / SYSTEM / "how-it-should-run.html").as_uri())
     assert page.is_visible("#pages a >> nth=0")

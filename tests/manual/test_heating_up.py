@@ -60,7 +60,9 @@ def test_rows_are_what_the_prediction_says(water: tuple[PlantData, SystemData]) 
 
 def test_the_element_helps_on_the_coldest_day_only(water: tuple[PlantData, SystemData]) -> None:
     """Where it is locked out the page says why; where it runs, the heat-up is shorter and costs more."""
-    rated, coldest = heating_ups(*water).ways  # type: ignore[union-attr]  # the system has a store
+    found = heating_ups(*water)
+    assert found is not None
+    rated, coldest = found.ways
     assert rated.element is not None
     assert "does not start" in rated.element
     assert len(rated.rows) == 2
@@ -87,7 +89,9 @@ def test_a_record_shows_what_the_rated_day_would_take(water: tuple[PlantData, Sy
     filed = FiledBlock.model_construct(not_judged={"heat_up_time": "nothing", "voltage": "within"})
     found = _not_judged(*water, filed)
     heat, voltage = found["not_judged"]
-    row = heating_ups(*water).ways[0].rows[0]  # type: ignore[union-attr]  # the system has a store
+    today = heating_ups(*water)
+    assert today is not None
+    row = today.ways[0].rows[0]
     assert f"as rated: {row.value} h, {row.band}" in heat[1]
     assert voltage == ("Voltage", "within")
     assert "from 10.0 °C to 60.0 °C" in found["heated"]

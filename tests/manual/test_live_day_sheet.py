@@ -113,8 +113,7 @@ def test_reference_saturation_lines_between_their_rows(name: str) -> None:
 
 def test_units_of_the_page_are_those_of_the_display() -> None:
     """SI = shown x factor + offset, gauges from the barometer, as the display shows the same value."""
-    for system in ("metric", "us_customary"):
-        display = Display(system, 97650.0)  # type: ignore[arg-type]  # both are unit systems
+    for display in (Display("metric", 97650.0), Display("us_customary", 97650.0)):
         for kind, value in (
             (Kind.TEMPERATURE, 271.3),
             (Kind.PRESSURE, 412345.0),
@@ -160,6 +159,8 @@ def test_a_system_that_cannot_be_calculated_still_has_a_sheet(loaded: LoadedPlan
     plant = without_model(plant_of(loaded, "cold-room"), "the rating of the condenser is not stated")
     text = write_sheet(plant, tmp_path).read_text(encoding="utf-8")
     assert "because the rating of the condenser is not stated" in text
-    data = json.loads(re.search(r'id="live-data">(.*?)</script>', text, re.DOTALL)[1])  # type: ignore[index]
+    found = re.search(r'id="live-data">(.*?)</script>', text, re.DOTALL)
+    assert found is not None
+    data = json.loads(found[1])
     assert data["expected"] is None
     assert {"suction_pressure", "discharge_pressure", "power_input"} <= set(data["readings"])

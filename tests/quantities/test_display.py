@@ -1,6 +1,7 @@
 """Numbers are shown in the reader's units, and read back to what they were."""
 
 import re
+from typing import get_args
 
 import pytest
 from hypothesis import given
@@ -17,8 +18,10 @@ from commission.quantities import (
     parse,
     parse_pressure,
 )
+from commission.quantities.display import UnitSystem
 
 BAROMETER = 97_656.0
+UNIT_SYSTEMS: tuple[UnitSystem, ...] = get_args(UnitSystem)
 SHOWN = {"m³": "m3", "m²": "m2", "ft³": "ft3", "ft²": "ft2"}
 
 
@@ -39,19 +42,19 @@ SHOWN = {"m³": "m3", "m²": "m2", "ft³": "ft3", "ft²": "ft2"}
         ("us_customary", Kind.TEMPERATURE_DIFFERENCE, 6.0, "10.8 °F difference"),
     ],
 )
-def test_text(system: str, kind: Kind, value: float, text: str) -> None:
+def test_text(system: UnitSystem, kind: Kind, value: float, text: str) -> None:
     """Number, unit, true minus sign, no negative zero; pressures say gauge."""
-    assert Display(system, BAROMETER).text(value, kind) == text  # type: ignore[arg-type]  # parametrised
+    assert Display(system, BAROMETER).text(value, kind) == text
 
 
 @given(
     value=st.floats(min_value=200.0, max_value=2e6),
     kind=st.sampled_from([k for k in Kind if k is not Kind.SOUND_LEVEL]),
-    system=st.sampled_from(["metric", "us_customary"]),
+    system=st.sampled_from(UNIT_SYSTEMS),
 )
-def test_what_is_shown_reads_back(value: float, kind: Kind, system: str) -> None:
+def test_what_is_shown_reads_back(value: float, kind: Kind, system: UnitSystem) -> None:
     """Shown with many digits and read again, a value of any kind is what it was, in both unit systems."""
-    display = Display(system, BAROMETER)  # type: ignore[arg-type]  # sampled
+    display = Display(system, BAROMETER)
     text = display.text(value, kind, digits=13)
     for shown, written in SHOWN.items():
         text = text.replace(shown, written)
@@ -61,8 +64,8 @@ def test_what_is_shown_reads_back(value: float, kind: Kind, system: str) -> None
 
 def test_every_kind_can_be_shown_with_its_spread() -> None:
     """No kind lacks a unit in either system; the spread of a temperature is in K or °F difference."""
-    for system in ("metric", "us_customary"):
-        display = Display(system, BAROMETER)  # type: ignore[arg-type]  # the two words of the type
+    for system in UNIT_SYSTEMS:
+        display = Display(system, BAROMETER)
         for kind in Kind:
             assert display.text(300.0, kind)
             assert display.spread(1.0, kind)
