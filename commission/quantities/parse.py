@@ -58,7 +58,7 @@ _EXAMPLE: dict[Kind, str] = {
     Kind.HEAT_FLOW: "3.4 kW, 11600 Btu/h or 1.8 refrigeration tons",
     Kind.MASS: "0.45 kg or 1.0 lb",
     Kind.VOLUME: "2.5 L or 60 US gal",
-    Kind.VOLUME_FLOW: "1200 m3/h or 400 cfm",
+    Kind.VOLUME_FLOW: "1200 m3/h, 400 cfm or 24 gpm",
     Kind.LIQUID_FLOW: "1.5 m3/h or 7 gpm",
     Kind.RATIO: "65 %",
     Kind.ENERGY: "1.8 kWh",
