@@ -13,7 +13,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.sheet_pages import sheet_context
 from commission.manual.showing import COVERAGE, SHEET_KEYS, How, show_how, size_text
 from commission.manual.system_pages import conditions_words
-from commission.quantities import Display, Kind
+from commission.quantities import Display, Kind, limits_in_words
 
 if TYPE_CHECKING:
     from commission.acceptance import Capability, GuaranteeCapability, ReadingCapability, TestSheet
@@ -141,9 +141,7 @@ def _limit(g: GuaranteeCapability, display: Display, kind: Kind) -> str:
     d = g.decision
     if d is None:
         return ""
-    parts = [f"at least {display.text(d.limit_low, kind)}"] if d.limit_low is not None else []
-    parts += [f"at most {display.text(d.limit_high, kind)}"] if d.limit_high is not None else []
-    return " and ".join(parts)
+    return limits_in_words(d.limit_low, d.limit_high, lambda value: display.text(value, kind))
 
 
 def _by_reason(found: Capability, display: Display) -> list[tuple[str, str]]:

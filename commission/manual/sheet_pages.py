@@ -12,7 +12,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.page_display import page_display
 from commission.manual.showing import COVERAGE, SHEET_KEYS, band_text, unit_of
 from commission.manual.system_pages import conditions_words
-from commission.quantities import Display, Kind
+from commission.quantities import Display, Kind, limits_in_words
 
 if TYPE_CHECKING:
     from commission.acceptance import Target, Terms, TestSheet
@@ -86,9 +86,8 @@ def _promised_line(target: Target, place: slice, display: Display) -> SheetLine:
     cells = []
     for value in target.values[place]:
         low, high = target.terms.limits(value) if target.terms else (None, None)
-        limit = [f"at least {display.number(low, kind)}"] if low is not None else []
-        limit += [f"at most {display.number(high, kind)}"] if high is not None else []
-        cells.append((display.number(value, kind), " and ".join(limit)))
+        limit = limits_in_words(low, high, lambda end: display.number(end, kind))
+        cells.append((display.number(value, kind), limit))
     return SheetLine(_head(target, display), ", ".join(target.instruments), tuple(cells))
 
 

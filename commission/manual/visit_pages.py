@@ -12,7 +12,7 @@ from commission.manual.heating_up import HeatingUps, heating_ups
 from commission.manual.page_display import page_display
 from commission.manual.records_pages import VERDICT_CLASS, signed
 from commission.manual.showing import unit_of
-from commission.quantities import NOMENCLATURE, Display, Kind
+from commission.quantities import NOMENCLATURE, Display, Kind, limits_in_words
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -56,9 +56,7 @@ def _deviation(display: Display, key: str, d: FrozenDeviation, written: str) -> 
 
 
 def _limits(display: Display, kind: Kind, low: float | None, high: float | None) -> str:
-    parts = [f"at least {display.text(low, kind)}"] if low is not None else []
-    parts += [f"at most {display.text(high, kind)}"] if high is not None else []
-    return " and ".join(parts)
+    return limits_in_words(low, high, lambda value: display.text(value, kind))
 
 
 def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:

@@ -1,6 +1,6 @@
 """Units, nomenclature and `Explained`: the words and numbers that every room shares. Knows no physics."""
 
-from commission.quantities.display import Display, json_value, pretty
+from commission.quantities.display import Display, json_value, limits_in_words, pretty
 from commission.quantities.explained import Explained, Input, Method, methods
 from commission.quantities.kinds import FLOWS, SI_UNIT, Kind
 from commission.quantities.nomenclature import NOMENCLATURE, MediumName, Quantity, nomenclature
@@ -26,6 +26,7 @@ __all__ = [
     "describe",
     "find_unit",
     "json_value",
+    "limits_in_words",
     "methods",
     "nomenclature",
     "parse",

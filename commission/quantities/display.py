@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
@@ -149,6 +149,13 @@ class Display:
     def kind(self, key: str) -> Kind:
         """The kind in which a quantity of the nomenclature is shown here."""
         return self.quantities[key].kind
+
+
+def limits_in_words(low: float | None, high: float | None, show: Callable[[float], str]) -> str:
+    """`at least 3.20 kW and at most 3.60 kW`, or the one of them that there is; empty where there is none."""
+    found = [f"at least {show(low)}"] if low is not None else []
+    found += [f"at most {show(high)}"] if high is not None else []
+    return " and ".join(found)
 
 
 def pretty(unit: str) -> str:

@@ -8,7 +8,7 @@ from importlib.metadata import version
 from typing import TYPE_CHECKING, Any
 
 from commission.description import LoadedPlant
-from commission.quantities import NOMENCLATURE, SI_UNIT, Display
+from commission.quantities import NOMENCLATURE, SI_UNIT, Display, limits_in_words
 from commission.records.filed import FrozenDeviation
 from commission.records.judge import NamedSheet
 from commission.records.record import Record, SiteReading
@@ -101,9 +101,8 @@ def guarantee_sentence(verdict: GuaranteeVerdict, display: Display) -> str:
         said += " measured"
     if verdict.decision is not None:
         low, high = verdict.decision.limit_low, verdict.decision.limit_high
-        wanted = [f"at least {display.text(low, kind)}"] if low is not None else []
-        wanted += [f"at most {display.text(high, kind)}"] if high is not None else []
-        said += f", {' and '.join(wanted)} promised for this condition"
+        wanted = limits_in_words(low, high, lambda value: display.text(value, kind))
+        said += f", {wanted} promised for this condition"
     if verdict.outcome == "undecided" and verdict.what_would_decide:
         said += f"; it would be decided by this: {verdict.what_would_decide}"
     return said
