@@ -9,7 +9,7 @@ from hypothesis import assume, given
 from hypothesis import strategies as st
 
 from commission.acceptance.budget import Budget, spread_of
-from commission.acceptance.decision import Rule, decide, fixed, significant
+from commission.acceptance.decision import Rule, decide, fixed, significant, sure_text
 
 values = st.floats(-100.0, 100.0)
 sizes = st.floats(0.001, 10.0)
@@ -133,3 +133,12 @@ def test_fixed_rounds_halves_away_from_zero() -> None:
     assert [fixed(x, 0) for x in (0.5, 1.5, 2.5, -2.5)] == ["1", "2", "3", "-3"]
     assert fixed(-0.04, 1) == "0.0"
     assert fixed(1.005, 2) == "1.00"  # the nearest double lies below 1.005
+
+
+@pytest.mark.parametrize(
+    ("probability", "printed"),
+    [(1.0, "more than 99.9 %"), (0.9995, "more than 99.9 %"), (0.9731, "97.3 %"), (0.0002, "less than 0.1 %")],
+)
+def test_no_probability_is_printed_as_certain(probability: float, printed: str) -> None:
+    """A measurement never makes conformity certain."""
+    assert sure_text(probability) == printed

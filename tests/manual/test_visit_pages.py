@@ -17,7 +17,7 @@ from commission.manual.book import Sheet
 from commission.manual.gather import gather_one
 from commission.manual.rendering import environment, render_body
 from commission.manual.single import LoneBook
-from commission.manual.visit_pages import _share_sure, certificates, record_page
+from commission.manual.visit_pages import certificates, record_page
 from commission.manual.where import templates_folder
 from commission.records import file_record, recompute
 from commission.records.filed import FrozenClosure
@@ -128,15 +128,6 @@ def test_a_certificate_names_both_digests_of_its_sheet_apart(folder: Path, pages
     certificate = _one(texts, "certificate")
     assert f"Digest line of the test sheet {line}" in certificate
     assert f"File of the test sheet (SHA-256) {of_file}" in certificate
-
-
-@pytest.mark.parametrize(
-    ("probability", "printed"),
-    [(1.0, "more than 99.9 %"), (0.9995, "more than 99.9 %"), (0.9731, "97.3 %"), (0.0002, "less than 0.1 %")],
-)
-def test_no_probability_is_printed_as_certain(probability: float, printed: str) -> None:
-    """A measurement never makes conformity certain."""
-    assert _share_sure(probability) == printed
 
 
 def test_a_later_visit_still_stands_under_the_reservation(folder: Path, pages: Pages, tmp_path: Path) -> None:
