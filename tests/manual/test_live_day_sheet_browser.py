@@ -222,7 +222,7 @@ def test_not_known_is_an_answer(look: Look, loaded: LoadedPlant, tmp_path: Path)
     type_in(opened, {**VISIT, "v-heat_source_inlet_temperature": "2", "v-heat_sink_outlet_temperature": "34",
                      "v-compressor_speed": "4200", "v-heat_sink_flow": "1.55"})  # fmt: skip
     opened.check("[data-field='unknown-heat_source_relative_humidity']")
-    assert "taken as designed: room air relative humidity" in opened.inner_text("#live-condition")
+    assert "taken as designed: outdoor air relative humidity" in opened.inner_text("#live-condition")
     assert said(opened, "discharge_temperature")[0].endswith("°C")
     type_in(opened, {"v-compressor_speed": ""})
     opened.check("[data-field='unknown-compressor_speed']")
