@@ -104,7 +104,7 @@ def _expectation(prediction: Prediction, key: str, budget: Budget, used: Mapping
     names = {i.name for i in inputs}
     explained = Explained(
         key, original.value, budget.standard, original.method,
-        (*inputs, *(i for i in original.inputs if i.name not in names)), original.assumptions,
+        (*inputs, *(i for i in original.inputs if i.name not in names)), original.assumptions, original.bounds,
     )  # fmt: skip
     return Expectation(key, original.value, budget, explained)
 

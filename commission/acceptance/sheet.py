@@ -17,7 +17,7 @@ from commission.acceptance.expectation import Expectation
 from commission.acceptance.grid import Axis, interpolate
 from commission.acceptance.guarantee import Carried, Terms
 from commission.errors import InputError, NotCalculatedError
-from commission.quantities import NOMENCLATURE, Explained, Input, Quantity
+from commission.quantities import NOMENCLATURE, Explained, Input, Quantity, bounds
 
 Purpose = Literal["guarantee", "expectation"]
 _ROOT_3 = math.sqrt(3.0)
@@ -160,7 +160,8 @@ class TestSheet:
             for a in self.axes
             if a.key in conditions
         )
-        return Explained(target.key, value, budget.standard, method, inputs)
+        at = {**self.conditions, **{k: m.value for k, m in conditions.items()}}
+        return Explained(target.key, value, budget.standard, method, inputs, bounds=bounds(target.key, at))
 
 
 def digest_of(body: str) -> str:

@@ -122,6 +122,8 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
         text = missing if missing.startswith(STATED_NOWHERE) else f"not calculated: {missing}"
         return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
     numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}
+    if within == "band":
+        numbers = as_far_as_can_be(numbers, explained)
     margin = _margin(numbers.get("value"), within if isinstance(within, str) else None, kind, explained)
     readable = _readable(item, numbers.get("value"), facts) if margin is not None and within != "band" else None
     finest = readable is not None and margin is not None and readable[1] > margin
@@ -195,6 +197,18 @@ def _range(numbers: dict[str, float], margin: float | None) -> tuple[float | Non
         return value, low, high
     first, last = value - margin, value + margin
     return value, first if low is None else max(first, low), last if high is None else min(last, high)
+
+
+def as_far_as_can_be(numbers: dict[str, float], explained: tuple[Explained, ...]) -> dict[str, float]:
+    """The numbers of a band, capped by what the expected value can be: no liquid leaves colder than its cooling."""
+    value = numbers.get("value")
+    least, most = next((e.bounds for e in explained if e.value == value), (None, None))
+    found = dict(numbers)
+    if value is not None and least is not None and value >= least:
+        found["at_least"] = max(least, numbers.get("at_least", least))
+    if value is not None and most is not None and value <= most:
+        found["at_most"] = min(most, numbers.get("at_most", most))
+    return found
 
 
 def _margin_kind(kind: Kind) -> Kind:

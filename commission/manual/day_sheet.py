@@ -12,10 +12,10 @@ from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.grid import Grid, GridPoint
 from commission.manual.live_plan import readings_of
-from commission.manual.showing import less_than_zero, size_text, unit_of
+from commission.manual.showing import cut_off, size_text, unit_of
 from commission.manual.system_pages import Cell, cell, grid_cell, grid_conditions
 from commission.manual.worked_out import EVAPORATOR_OUTLET, WORKED_OUT, evaporator_outlet, how
-from commission.quantities import Kind
+from commission.quantities import Display, Kind
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction
@@ -133,15 +133,15 @@ def _read_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]
 def _outlet_row(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> SheetRow:
     """The pipe at the evaporator outlet, read with what reads the suction line."""
     display, found = data.display, [evaporator_outlet(p.prediction) if p.prediction else None for p in points]
-    cells = tuple(Cell("–", "") if e is None else cell("", e, Kind.TEMPERATURE, display) for e in found)
+    cells = tuple(Cell("–", "") if e is None else cell(e, Kind.TEMPERATURE, display) for e in found)
     probe = instrument_words(plant, data, "suction_temperature", _values(data).get("suction_temperature"))
     return SheetRow(EVAPORATOR_OUTLET, unit_of(display, Kind.TEMPERATURE), "", probe, cells)
 
 
-def _cut(key: str, predictions: Sequence[Prediction]) -> str:
-    """What a band that was cut at zero leaves out, where one was."""
+def _cut(key: str, predictions: Sequence[Prediction], display: Display) -> str:
+    """What a band that is shown only as far as it can be leaves out, where one is."""
     expected = [p.expected[key] for p in predictions if key in p.expected]
-    return next((text for e in expected if (text := less_than_zero(key, e.value, e.uncertainty))), "")
+    return next((text for e in expected if (text := cut_off(e, display))), "")
 
 
 def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]) -> tuple[SheetRow, ...]:
@@ -151,7 +151,7 @@ def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint
         SheetRow(
             display.label(key),
             unit_of(display, display.kind(key)),
-            "; ".join(t for t in (how(key, fluid, predictions, display), _cut(key, predictions)) if t),
+            "; ".join(t for t in (how(key, fluid, predictions, display), _cut(key, predictions, display)) if t),
             "",
             tuple(grid_cell(p, key, display) for p in points),
         )

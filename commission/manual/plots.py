@@ -86,17 +86,17 @@ def _gauge_word(unit: str) -> str:
 
 def _line(grid: Grid, key: str, words: str, kind: Kind, display: Display) -> Line | None:
     values: list[float | None] = []
-    half: list[float | None] = []
+    ends: list[tuple[float, float] | None] = []
     for point in grid.line:
         explained = point.prediction.expected.get(key) if point.prediction else None
         if explained is None:
             values.append(None)
-            half.append(None)
+            ends.append(None)
             continue
-        value, u = display.convert(explained.value, kind), explained.uncertainty
-        values.append(value)
-        half.append(None if u is None else abs(display.convert(explained.value + COVERAGE * u, kind) - value))
-    return Line(words, tuple(values), tuple(half)) if any(v is not None for v in values) else None
+        band = explained.band(COVERAGE)
+        values.append(display.convert(explained.value, kind))
+        ends.append(None if band is None else (display.convert(band[0], kind), display.convert(band[1], kind)))
+    return Line(words, tuple(values), tuple(ends)) if any(v is not None for v in values) else None
 
 
 def ph_figure(data: SystemData, display: Display) -> Figure | None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import product
 from typing import TYPE_CHECKING, Any
@@ -12,7 +13,7 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.page_display import page_display
 from commission.manual.showing import COVERAGE, SHEET_KEYS, band_text, unit_of
 from commission.manual.system_pages import conditions_words
-from commission.quantities import Display, Kind, limits_in_words
+from commission.quantities import Display, Kind, bounds, limits_in_words
 
 if TYPE_CHECKING:
     from commission.acceptance import Target, Terms, TestSheet
@@ -43,6 +44,7 @@ def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[She
     """A sheet as tables: columns along its last axis, one table for each combination of the others; a quantity that
     nobody can read of this system is not asked for."""
     from commission.acceptance.choosing import cannot_be_read
+    from commission.acceptance.grid import points
 
     asked = [k for k in SHEET_KEYS if cannot_be_read(k, system) is None]
     *outer, last = sheet.axes
@@ -52,6 +54,7 @@ def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[She
     for n, values in enumerate(product(*(a.values for a in outer))):
         fixed = ", ".join(f"{display.words(a.key)} {display.of(a.key, v)}" for a, v in zip(outer, values, strict=True))
         place = slice(n * len(last.values), (n + 1) * len(last.values))
+        where = [{**sheet.conditions, **at} for at in points(sheet.axes)[place]]
         expected = [t for t in sheet.targets_for("expectation") if t.key in asked]
         expected.sort(key=lambda t: SHEET_KEYS.index(t.key))
         grids.append(
@@ -60,7 +63,7 @@ def sheet_grids(sheet: TestSheet, display: Display, system: System) -> tuple[She
                 display.label(last.key),
                 heads,
                 tuple(_promised_line(t, place, display) for t in sheet.targets_for("guarantee")),
-                tuple(_expected_line(t, place, display) for t in expected),
+                tuple(_expected_line(t, place, where, display) for t in expected),
             )
         )
     return tuple(grids)
@@ -72,11 +75,11 @@ def _head(target: Target, display: Display) -> str:
     return f"{display.label(target.key)}, {unit}" if unit else display.label(target.key)
 
 
-def _expected_line(target: Target, place: slice, display: Display) -> SheetLine:
+def _expected_line(target: Target, place: slice, where: Sequence[Mapping[str, float]], display: Display) -> SheetLine:
     kind = display.kind(target.key)
     cells = tuple(
-        (display.number(v, kind), band_text(display, kind, v, u))
-        for v, u in zip(target.values[place], target.uncertainties[place], strict=True)
+        (display.number(v, kind), band_text(display, kind, bounds(target.key, at).around(v, COVERAGE * u)))
+        for v, u, at in zip(target.values[place], target.uncertainties[place], where, strict=True)
     )
     return SheetLine(_head(target, display), ", ".join(target.instruments), cells)
 

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 from commission.description import Assumption
 from commission.quantities import Display, Explained, Input, Kind, methods, pretty
+from commission.quantities.bounds import NOT_ABOVE, NOT_BELOW
 
 COVERAGE = 2.0
 """Bands are the expected value plus and minus this many standard uncertainties (about 95 %; JCGM 100, 6.3.3)."""
@@ -96,21 +97,28 @@ _BELOW_ZERO = {
 """What it means where one of these reads less than zero: a machine that does so is not the one that is expected."""
 
 
-def less_than_zero(key: str, value: float, uncertainty: float | None) -> str:
-    """What lies below zero, where the band of a difference that cannot be negative is shown from zero only."""
-    if key not in _BELOW_ZERO or uncertainty is None or not 0.0 <= value < COVERAGE * uncertainty:
+def cut_off(explained: Explained, display: Display) -> str:
+    """What lies beyond the end of a band that is shown only as far as it can be; empty where nothing is cut off."""
+    band, kind = explained.band(COVERAGE), kind_of(explained, display)
+    if band is None:
         return ""
-    return f"less than 0 is {_BELOW_ZERO[key]}"
+    half = COVERAGE * (explained.uncertainty or 0.0)
+    if band[0] > explained.value - half:
+        meant = _BELOW_ZERO.get(explained.quantity)
+        if meant is not None:
+            return f"less than 0 is {meant}"
+        ends = f"not below {display.text(band[0], kind)}"
+        return f"{ends}: what cools it enters at that" if explained.quantity in NOT_BELOW else ""
+    if band[1] < explained.value + half and explained.quantity in NOT_ABOVE:
+        return f"not above {display.text(band[1], kind)}: what warms it enters at that"
+    return ""
 
 
-def band_text(display: Display, kind: Kind, value: float, uncertainty: float | None, key: str = "") -> str:
-    """The band around an expected value, numbers alone: `2.21 to 2.41`, or how small it is; for a `key` that cannot be
-    negative, from zero."""
-    if uncertainty is None:
+def band_text(display: Display, kind: Kind, band: tuple[float, float] | None) -> str:
+    """The band around an expected value, numbers alone: `2.21 to 2.41`, or how small it is."""
+    if band is None:
         return "not stated"
-    half = COVERAGE * uncertainty
-    least = 0.0 if less_than_zero(key, value, uncertainty) else value - half
-    low, high = (display.number(end, kind) for end in (least, value + half))
+    low, high = (display.number(end, kind) for end in band)
     if low == high:
         digits = display.unit_and_digits(kind)[1]
         return f"within {10.0**-digits:.{digits}f}"
@@ -208,10 +216,10 @@ def show(
     return Row(
         key=key,
         label=label_of(key, display),
-        definition="; ".join(t for t in (meant, less_than_zero(key, explained.value, explained.uncertainty)) if t),
+        definition="; ".join(t for t in (meant, cut_off(explained, display)) if t),
         value=display.number(explained.value, kind),
         unit=unit_of(display, kind),
-        band=band_text(display, kind, explained.value, explained.uncertainty, key),
+        band=band_text(display, kind, explained.band(COVERAGE)),
         how=show_how(explained, display, assumptions, parts),
     )
 

@@ -16,6 +16,7 @@ from commission.manual.grid import Grid, GridPoint
 from commission.manual.heating_up import heating_ups
 from commission.manual.plots import Figure
 from commission.manual.showing import (
+    COVERAGE,
     GRID_KEYS,
     How,
     Row,
@@ -198,13 +199,12 @@ def grid_cell(point: GridPoint, key: str, display: Display) -> Cell:
     explained = point.prediction.expected.get(key) if point.prediction else None
     if explained is None:
         return Cell("–", "")
-    return cell(key, explained, display.kind(key), display)
+    return cell(explained, display.kind(key), display)
 
 
-def cell(key: str, explained: Explained, kind: Kind, display: Display) -> Cell:
-    """The cell of one value of a kind; no `key` where it has none in the nomenclature."""
-    band = band_text(display, kind, explained.value, explained.uncertainty, key)
-    return Cell(display.number(explained.value, kind), band)
+def cell(explained: Explained, kind: Kind, display: Display) -> Cell:
+    """The cell of one value of a kind."""
+    return Cell(display.number(explained.value, kind), band_text(display, kind, explained.band(COVERAGE)))
 
 
 def _grid_row(

@@ -9,7 +9,7 @@ from commission.machine import OperatingPoint
 from commission.prediction.expected import Found
 from commission.prediction.facts import Facts
 from commission.prediction.fitting import Fit
-from commission.quantities import NOMENCLATURE, Explained, Input, Kind
+from commission.quantities import NOMENCLATURE, Explained, Input, Kind, bounds
 
 METHOD: Mapping[str, str] = {
     "evaporating_temperature": "component_balance",
@@ -167,7 +167,8 @@ def explain(
         named = [c for c, v in own.items() if c in fit.used and abs(v) >= NOTICED * uncertainty]
         named.sort(key=lambda c: -abs(own[c]))
         inputs += [Input(c, fit.values[c], fit.used[c].kind, f"assumption {c}") for c in named]
-        table[key] = Explained(key, value, uncertainty, methods[key], tuple(inputs), tuple(named))
+        at = bounds(key, conditions)
+        table[key] = Explained(key, value, uncertainty, methods[key], tuple(inputs), tuple(named), at)
     return table
 
 

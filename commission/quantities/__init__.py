@@ -1,5 +1,6 @@
 """Units, nomenclature and `Explained`: the words and numbers that every room shares. Knows no physics."""
 
+from commission.quantities.bounds import Bounds, bounds
 from commission.quantities.display import Display, json_value, limits_in_words, pretty
 from commission.quantities.explained import Explained, Input, Method, methods
 from commission.quantities.kinds import FLOWS, SI_UNIT, Kind
@@ -12,6 +13,7 @@ __all__ = [
     "NOMENCLATURE",
     "SI_UNIT",
     "UNITS",
+    "Bounds",
     "Display",
     "Explained",
     "Input",
@@ -23,6 +25,7 @@ __all__ = [
     "QuantityError",
     "Reference",
     "Unit",
+    "bounds",
     "describe",
     "find_unit",
     "json_value",

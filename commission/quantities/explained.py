@@ -8,6 +8,7 @@ from functools import cache
 from importlib.resources import files
 
 from commission.errors import Problem
+from commission.quantities.bounds import UNBOUNDED, Bounds
 from commission.quantities.kinds import Kind
 
 
@@ -31,7 +32,7 @@ class Explained:
 
     `quantity` is a key of the nomenclature; `value` is in SI (pressures absolute); `uncertainty` is the standard
     uncertainty (coverage factor 1) in the same unit, None where none can be stated; `method` is a key of
-    `methods.yaml`; `assumptions` are keys of the assumption list that move this value.
+    `methods.yaml`; `assumptions` are keys of the assumption list that move this value; `bounds` is what can be.
     """
 
     quantity: str
@@ -40,6 +41,12 @@ class Explained:
     method: str
     inputs: tuple[Input, ...] = ()
     assumptions: tuple[str, ...] = ()
+    bounds: Bounds = UNBOUNDED
+
+    def band(self, coverage: float) -> tuple[float, float] | None:
+        """Lowest and highest value within `coverage` standard uncertainties, as far as they can be (SI); None where no
+        uncertainty can be stated."""
+        return None if self.uncertainty is None else self.bounds.around(self.value, coverage * self.uncertainty)
 
 
 @dataclass(frozen=True, slots=True)

@@ -59,3 +59,28 @@ def test_only_a_reading_makes_a_flow_known(models: Mapping[str, SystemModel]) ->
     assert known is not None
     assert 0.3 < stated < 0.5
     assert known < 0.5 * stated
+
+
+OUTDOORS = {
+    "cold-room": ("heat_sink_inlet_temperature", (273.15, 288.15, 308.15)),
+    "freezer-room": ("heat_sink_inlet_temperature", (288.15, 298.15, 308.15)),
+    "shower-water": ("heat_source_inlet_temperature", (263.15, 268.15, 273.15, 293.15)),
+}
+
+
+@pytest.mark.parametrize("system", OUTDOORS)
+def test_no_band_breaks_the_second_law(models: Mapping[str, SystemModel], system: str) -> None:
+    """Liquid and gas are nowhere expected colder than the air or the water that cools them, evaporation nowhere warmer
+    than the air that gives the heat, no superheat below nothing."""
+    key, temperatures = OUTDOORS[system]
+    for temperature in temperatures:
+        found = models[system].predict({key: temperature})
+        coldest, warmest = (found.conditions[f"heat_{s}_inlet_temperature"] for s in ("sink", "source"))
+        bands = {k: e.band(2.0) for k, e in found.expected.items()}
+        for name in ("liquid_temperature", "gas_cooler_outlet_temperature", "condensing_temperature"):
+            assert (band := bands.get(name)) is None or band[0] >= coldest, (temperature, name)
+        for name in ("superheat", "subcooling", "gas_cooler_approach", "condenser_temperature_difference"):
+            assert (band := bands.get(name)) is None or band[0] >= 0.0, (temperature, name)
+        evaporating = bands["evaporating_temperature"]
+        assert evaporating is not None
+        assert evaporating[1] <= warmest

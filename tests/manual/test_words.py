@@ -21,7 +21,7 @@ from commission.manual.page_display import PageDisplay
 from commission.manual.paper import css_string
 from commission.manual.plant_pages import by_date
 from commission.manual.saturation import table_temperatures
-from commission.manual.showing import band_text, grouped, show, show_input, sourced, spread_text
+from commission.manual.showing import COVERAGE, band_text, grouped, show, show_input, sourced, spread_text
 from commission.manual.states import (
     Standing,
     Visit,
@@ -52,7 +52,8 @@ PAGES = {k: k for k in ("what", "findings", "checklist", "day_sheet", "test", "o
 )
 def test_band_is_two_standard_uncertainties(kind: Kind, value: float, uncertainty: float | None, text: str) -> None:
     """The band is value plus and minus two standard uncertainties in display units; one that rounds away says so."""
-    assert band_text(METRIC, kind, value, uncertainty) == text
+    band = Explained("x", value, uncertainty, "stated").band(COVERAGE)
+    assert band_text(METRIC, kind, band) == text
 
 
 def test_a_moved_assumption_is_shown_as_it_is_used_with_the_listed_value_beside_it() -> None:
@@ -161,7 +162,9 @@ def test_saturation_temperatures_are_whole_degrees_of_the_site() -> None:
 
 def test_figures_are_the_same_to_the_byte_and_have_a_dark_twin() -> None:
     """Two drawings are equal, hold real text and no date; by night each colour of ours is replaced."""
-    chart = Chart("T", "Outdoor air in °C", "Pressures", (0.0, 5.0), (Line("suction", (1.0, 2.0), (0.1, None)),), 5.0)
+    chart = Chart(
+        "T", "Outdoor air in °C", "Pressures", (0.0, 5.0), (Line("suction", (1.0, 2.0), ((0.9, 1.1), None)),), 5.0
+    )
     day = draw_chart(chart)
     assert day == draw_chart(chart)
     assert b"Outdoor air in" in day

@@ -11,11 +11,11 @@ from commission.manual.figures.style import COLOURS, INK, new_figure, our_style,
 
 @dataclass(frozen=True, slots=True)
 class Line:
-    """One line: its name, values in display units and half band at each x; None where nothing is calculated."""
+    """One line: its name, values in display units and ends of the band at each x; None where nothing is calculated."""
 
     name: str
     values: tuple[float | None, ...]
-    half: tuple[float | None, ...]
+    ends: tuple[tuple[float, float] | None, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,11 +55,11 @@ def draw_chart(chart: Chart) -> bytes:
         ends = []
         for colour, style, line in zip(COLOURS, ("-", "-", "--"), chart.lines, strict=False):
             y = [_number(v) for v in line.values]
-            half = [_number(h) if h is not None else 0.0 for h in line.half]
+            bands = [(v, v) if e is None else e for v, e in zip(y, line.ends, strict=True)]
             axes.fill_between(
                 chart.x,
-                [a - b for a, b in zip(y, half, strict=True)],
-                [a + b for a, b in zip(y, half, strict=True)],
+                [low for low, _ in bands],
+                [high for _, high in bands],
                 color=colour,
                 alpha=0.2,
                 linewidth=0,
