@@ -24,7 +24,8 @@ def beyond_limits(facts: Facts, values: Mapping[str, float], conditions: Mapping
     """A sentence for each stated limit that the expected `values` (SI, keys of the nomenclature) lie beyond."""
     values = {**values, "evaporating_temperature": suction_dew_point(values)}
     limits = (_envelope, _polynomials, _devices, _controller)
-    return (*(text for limit in limits for text in limit(facts, values)), *_heating_limit(facts, conditions))
+    said = (text for limit in limits for text in limit(facts, values))
+    return (*said, *_flow_switches(facts, {**values, **conditions}), *_heating_limit(facts, conditions))
 
 
 def suction_dew_point(values: Mapping[str, float]) -> float:
@@ -116,6 +117,17 @@ def _devices(facts: Facts, values: Mapping[str, float]) -> Iterator[str]:
             yield (
                 f"{device}, set to {shown.of(key, setting)}, stops the machine before it reaches the expected "
                 f"{shown.of(key, values[key])}"
+            )
+
+
+def _flow_switches(facts: Facts, values: Mapping[str, float]) -> Iterator[str]:
+    """Flows of the condition, or expected ones, at which a flow switch stops the machine."""
+    for side, medium in (("heat_source", facts.system.heat_source), ("heat_sink", facts.system.heat_sink)):
+        key, least = f"{side}_flow", medium.least_flow
+        if least is not None and key in values and values[key] < least * (1.0 - 1e-9):
+            yield (
+                f"the flow switch, set to {facts.shown.of(key, least)}, stops the machine at a "
+                f"{facts.shown.words(key)} of {facts.shown.of(key, values[key])}: the values hold only as if it ran on"
             )
 
 

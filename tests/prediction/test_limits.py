@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 
 from commission.description import LoadedPlant
@@ -70,3 +72,24 @@ def test_limit_devices(example: LoadedPlant) -> None:
     assert said[0].startswith("the discharge thermostat, set to 120.0 °C")
     assert said[0].endswith(f"{hot:.1f} °C")
     assert said[1].startswith("the low-pressure control, set to 0.10 bar g")
+
+
+def test_below_the_flow_switch(heating: SystemModel) -> None:
+    """The floor heating's flow switch stops it below 0.95 m3/h of water: at 0.8 m3/h that is said, above it is not."""
+    for flow, said in ((0.8, True), (0.949, True), (0.95, False), (1.5, False)):
+        warnings = heating.predict({OUTDOOR: KELVIN + 2, "heat_sink_flow": flow / 3600.0}).warnings
+        found = [w for w in warnings if "flow switch, set to 0.95" in w and "stops the machine" in w]
+        assert bool(found) is said, flow
+
+
+def test_an_expected_flow_below_the_flow_switch(example: LoadedPlant) -> None:
+    """A water heater in one pass sets its own flow: where too little heat leaves less than the switch asks for, so it
+    is said of the flow that is expected."""
+    system = example.system("shower-water")
+    fitted = fit(example, "shower-water")
+    flow = fitted.predict().expected["heat_sink_flow"].value
+    for factor, said in ((0.9, False), (1.1, True)):
+        sink = system.heat_sink.model_copy(update={"least_flow": factor * flow})
+        facts = replace(fitted.facts, system=system.model_copy(update={"heat_sink": sink}))
+        warnings = replace(fitted, facts=facts).predict().warnings
+        assert any("flow switch" in w for w in warnings) is said
