@@ -15,7 +15,7 @@ from commission.acceptance.decision import Decision
 from commission.acceptance.evaluation import Evaluation, evaluate
 from commission.acceptance.expectation import Deviation
 from commission.acceptance.guarantee import Terms, carry, terms_of
-from commission.acceptance.instruments import Reading
+from commission.acceptance.instruments import COUNTED, Reading
 from commission.acceptance.judgement import GuaranteeVerdict, coarse, verdict
 from commission.acceptance.routes import Refusal
 from commission.quantities import NOMENCLATURE, Explained, Kind
@@ -139,7 +139,7 @@ def _readings(
             lacking[key] = closed
             continue
         name = choose_instrument(key, value, loaded, system)
-        if name is None:
+        if name is None and key not in COUNTED:
             lacking[key] = NO_INSTRUMENT
         else:
             found.append(Reading(key, value, name))

@@ -12,6 +12,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Budget, Measured, combine
+from commission.description.model import NEAR_A_STAGE
 from commission.errors import NotCalculatedError
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind
 
@@ -19,7 +20,7 @@ if TYPE_CHECKING:
     from commission.prediction import SystemModel
 
 DRY, WET, HUMIDITY = "heat_source_inlet_temperature", "heat_source_wet_bulb", "heat_source_relative_humidity"
-BAROMETER = "barometric_pressure"
+BAROMETER, STAGE = "barometric_pressure", "compressor_stage"
 _STEP: Mapping[str, float] = {DRY: 1e-3, WET: 1e-3, HUMIDITY: 1e-3, BAROMETER: 10.0}
 """Steps of the slopes, SI; small, for at 0.01 °C the wick turns to ice and the humidity jumps by a percent or so."""
 
@@ -179,6 +180,11 @@ def _slope(function: Callable[..., float], values: Mapping[str, float], name: st
             continue
         return (high - low) / (above + below)
     raise NotCalculatedError(f"no air is near this one in {NOMENCLATURE[name].kind.value}")
+
+
+def another_stage(conditions: Mapping[str, Measured], wanted: float) -> bool:
+    """Whether the machine ran at another capacity stage than the wanted one."""
+    return STAGE in conditions and abs(conditions[STAGE].value - wanted) > NEAR_A_STAGE
 
 
 def missing_temperature(model: SystemModel, used: Collection[str]) -> str | None:

@@ -11,11 +11,11 @@ from typing import TYPE_CHECKING
 from commission.acceptance.air_route import air_side
 from commission.acceptance.budget import Measured
 from commission.acceptance.closure import Closure, closures
-from commission.acceptance.conditions import day_condition, missing_temperature
+from commission.acceptance.conditions import STAGE, day_condition, missing_temperature
 from commission.acceptance.derived import Derived, derive, less, ratio, unbalance
 from commission.acceptance.expectation import Deviation, Expectation, deviation, expect
 from commission.acceptance.impossible import Impossible, impossible
-from commission.acceptance.inferring import SPEED, infer_speed
+from commission.acceptance.inferring import SPEED, infer_speed, infer_stage
 from commission.acceptance.instruments import Reading, measure
 from commission.acceptance.route_inputs import RouteInputs, from_sheet, live
 from commission.acceptance.routes import (
@@ -94,7 +94,7 @@ class Evaluation:
         if key == "power_input":
             if key not in self.measured:
                 raise NotCalculatedError("it needs a reading of power input")
-            if key in self.not_judged and SPEED in self.conditions:
+            if key in self.not_judged and {SPEED, STAGE} & set(self.conditions):
                 raise NotCalculatedError(self.not_judged[key])
             return self.measured[key], "electric meter"
         if key in ("cooling_cop", "heating_cop"):
@@ -136,8 +136,9 @@ def evaluate(
     warnings = list(dict.fromkeys(w for m in measured.values() for w in m.budget.warnings))
     warnings += day.warnings
     prediction, why, spent = _predict(model, used, measured)
-    not_judged.update(spent)
-    warnings += [f"{words(SPEED)} was not read: inferred from {words(k)}" for k in spent]
+    for key, condition in spent.items():
+        not_judged[key] = f"spent on the {words(condition)}, which was not read and is inferred from it"
+        warnings.append(f"{words(condition)} was not read: inferred from {words(key)}")
     if prediction is not None:
         warnings += prediction.warnings
         warnings += [f"{words(k)} was not read: taken as designed" for k in prediction.filled]
@@ -208,19 +209,20 @@ def _measure_all(
 def _predict(
     model: SystemModel, used: dict[str, Measured], measured: Mapping[str, Measured]
 ) -> tuple[Prediction | None, str | None, dict[str, str]]:
-    """The prediction at the measured condition, or why there is none, and the reading spent on an unknown speed.
+    """The prediction at the measured condition, or why there is none, and which reading was spent on which condition.
 
-    A speed that was inferred is added to `used`.
+    A speed or a stage that was inferred is added to `used`.
     """
     lacking = missing_temperature(model, used)
     if lacking is not None:
         return None, f"{model.facts.shown.words(lacking)} was not read: without it nothing can be expected", {}
     spent: dict[str, str] = {}
     try:
-        if SPEED in model.condition_axes and SPEED not in used:
-            inferred = infer_speed(model, used, measured)
-            used[SPEED] = inferred.speed
-            spent[inferred.spent] = "spent on the compressor speed, which was not read and is inferred from it"
+        for key, infer in ((STAGE, infer_stage), (SPEED, infer_speed)):
+            if key in model.condition_axes and key not in used:
+                inferred = infer(model, used, {k: m for k, m in measured.items() if k not in spent})
+                used[key] = inferred.condition
+                spent[inferred.spent] = key
         return model.predict({k: m.value for k, m in used.items()}), None, spent
     except NotCalculatedError as error:
         return None, str(error), {}

@@ -136,6 +136,10 @@ def _axes(model: SystemModel, ranges: Mapping[str, Sequence[float]]) -> tuple[Ax
         for key in ranges
         if key not in model.condition_axes
     ]  # fmt: skip
+    for key in ranges:
+        if key in model.condition_axes and model.condition_axes[key].steps:
+            message = "it has no values between its steps: freeze a sheet for each of them"
+            problems.append(Problem(message, path=key, allowed=f"--at {key}=..."))
     for key, values in ranges.items():
         if not values or any(b <= a for a, b in itertools.pairwise(values)):
             problems.append(Problem("the values of a range must be given in rising order", path=key))

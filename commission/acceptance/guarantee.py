@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
 from commission.acceptance.budget import Budget, Component, Measured, combine
-from commission.acceptance.conditions import day_condition, known_to, plain_in_model, with_air
+from commission.acceptance.conditions import STAGE, another_stage, day_condition, known_to, plain_in_model, with_air
 from commission.acceptance.decision import Rule
 from commission.acceptance.expectation import model_component
 from commission.acceptance.grid import Axis, interpolate, points
@@ -138,7 +138,16 @@ def carry(
     """
     if terms.carried_by == "design model":
         return by_model(terms, conditions, model, there, unread)
-    if terms.carried_by == "supplier's table":
+    table = terms.carried_by == "supplier's table"
+    axis = model.condition_axes.get(STAGE)
+    stage = terms.at.get(STAGE, axis.rated if axis is not None else 1.0)
+    in_it = table and len({p.compressor_stage for p in rated_points}) > 1
+    if not in_it and another_stage(conditions, stage):
+        raise NotCalculatedError(
+            f"the guarantee holds for a compressor stage of {100 * stage:.0f} %, and the day ran at "
+            f"{100 * conditions[STAGE].value:.0f} %"
+        )
+    if table:
         return by_table(terms, conditions, rated_points, model.facts.pressure)
     return as_stated(terms, conditions, model)
 

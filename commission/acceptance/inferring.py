@@ -1,4 +1,4 @@
-"""A compressor speed that nobody could read, inferred from one reading, which is spent on it."""
+"""A compressor speed or stage that nobody could read, inferred from one reading, which is spent on it."""
 
 from __future__ import annotations
 
@@ -7,24 +7,25 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Measured, combine
-from commission.acceptance.expectation import model_budget
+from commission.acceptance.conditions import STAGE
+from commission.acceptance.expectation import deviation, expect, model_budget
 from commission.errors import NotCalculatedError
 
 if TYPE_CHECKING:
     from commission.prediction import Prediction, SystemModel
 
 SPEED = "compressor_speed"
-SPENT_ON_SPEED = ("power_input", "compressor_power", "current")
-"""Readings that a speed can be inferred from, the first that was taken is used: all rise with the speed."""
+TELLING = ("power_input", "compressor_power", "current")
+"""Readings that a speed or a stage can be inferred from, the first that was taken is used: all rise with it."""
 _TURNS = 12
 _CLOSE = 1e-6
 
 
 @dataclass(frozen=True, slots=True)
 class Inferred:
-    """The speed with its budget, and the reading that was spent on it and cannot be judged any more."""
+    """The condition with its budget, and the reading that was spent on it and cannot be judged any more."""
 
-    speed: Measured
+    condition: Measured
     spent: str
 
 
@@ -37,10 +38,7 @@ def infer_speed(model: SystemModel, used: Mapping[str, Measured], measured: Mapp
     Raises:
         NotCalculatedError: no such reading, or no speed within the limits of the machine explains it.
     """
-    key = next((k for k in SPENT_ON_SPEED if k in measured), None)
-    label = model.facts.shown.words(SPEED)
-    if key is None:
-        raise NotCalculatedError(f"{label} was not read, and neither power nor current from which to infer it")
+    key, label = _telling(model, SPEED, measured)
     axis, read = model.condition_axes[SPEED], measured[key]
     speed = axis.rated
     for _ in range(_TURNS):
@@ -71,3 +69,39 @@ def _with_budget(
     expected = combine(model_budget(model, prediction, read.key), *through)
     budget = combine(read.budget.scaled(1.0 / slopes[SPEED]), expected.scaled(-1.0 / slopes[SPEED]))
     return Measured(SPEED, speed, budget)
+
+
+def infer_stage(model: SystemModel, used: Mapping[str, Measured], measured: Mapping[str, Measured]) -> Inferred:
+    """The only capacity stage at which the model expects what was read, within the doubt of both.
+
+    Raises:
+        NotCalculatedError: no such reading, none of the stages explains it, or several do.
+    """
+    key, label = _telling(model, STAGE, measured)
+    found = []
+    for step in model.condition_axes[STAGE].steps:
+        stage = Measured(STAGE, step)
+        try:
+            expected = expect(model, {**used, STAGE: stage}, (key,)).get(key)
+        except NotCalculatedError:
+            continue
+        if expected is not None and not deviation(measured[key], expected).significant:
+            found.append(stage)
+    if len(found) == 1:
+        return Inferred(found[0], key)
+    steps = ", ".join(f"{100 * stage.value:.0f} %" for stage in found)
+    why = f"several of them ({steps}) explain" if found else "none of them explains"
+    raise NotCalculatedError(f"{label} was not read, and {why} the {model.facts.shown.words(key)} that was")
+
+
+def _telling(model: SystemModel, condition: str, measured: Mapping[str, Measured]) -> tuple[str, str]:
+    """The reading that tells a condition, and the name of that condition.
+
+    Raises:
+        NotCalculatedError: there is no such reading.
+    """
+    label = model.facts.shown.words(condition)
+    key = next((k for k in TELLING if k in measured), None)
+    if key is None:
+        raise NotCalculatedError(f"{label} was not read, and neither power nor current from which to infer it")
+    return key, label

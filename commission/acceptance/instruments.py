@@ -86,8 +86,9 @@ def library() -> Mapping[str, Any]:
     return data
 
 
-COUNTED = ("running_share", "starts_per_hour", "defrost_time")
-"""What is counted or timed over a log or by the clock: no instrument has an error in it that would be worth a word."""
+COUNTED = ("running_share", "starts_per_hour", "defrost_time", "compressor_stage")
+"""What is counted, timed over a log or by the clock, or one of a few known values: no instrument has an error in it
+that would be worth a word."""
 
 
 def instrument_class(name: str, measures: str) -> Mapping[str, Any]:

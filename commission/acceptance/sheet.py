@@ -13,6 +13,7 @@ from dataclasses import dataclass, field
 from typing import Literal
 
 from commission.acceptance.budget import Budget, Component, Measured, combine
+from commission.acceptance.conditions import STAGE, another_stage
 from commission.acceptance.expectation import Expectation
 from commission.acceptance.grid import Axis, interpolate
 from commission.acceptance.guarantee import Carried, Terms
@@ -105,6 +106,12 @@ class TestSheet:
             NotCalculatedError: the day lies outside the range that was agreed, or a condition was not read.
         """
         at = {k: m.value for k, m in conditions.items()}
+        held = self.conditions.get(STAGE)
+        if held is not None and another_stage(conditions, held):
+            raise NotCalculatedError(
+                f"the sheet was frozen for a compressor stage of {100 * held:.0f} %, and the day ran at "
+                f"{100 * at[STAGE]:.0f} %"
+            )
         value, slopes = interpolate(self.axes, target.values, at, names)
         own = self._own(target, at)
         parts = [

@@ -136,6 +136,11 @@ def _condition(looked: Looked, at: KeyPath, condition: Conditions, system: Syste
         if wet is not None and humidity is not None:
             message = "wet bulb and relative humidity say the same; write one of them"
             yield looked.positions.problem((*at, f"{side}_relative_humidity"), message)
+    stage, compressor = condition.compressor_stage, system.compressor
+    if stage is not None and compressor.step_near(stage) is None:
+        allowed = ", ".join(f"{100 * step:.0f} %" for step in compressor.steps)
+        allowed = allowed or "write the stages under compressor.stages first"
+        yield looked.positions.problem((*at, "compressor_stage"), "the compressor has no such stage", allowed=allowed)
 
 
 def _guarantees(looked: Looked, at: KeyPath, system: System) -> Iterator[Problem]:
@@ -160,9 +165,14 @@ def _compressor(looked: Looked, at: KeyPath, system: System) -> Iterator[Problem
     speeds = ("minimum_speed", "nominal_speed", "maximum_speed")
     yield from _ascending(looked, path, compressor, speeds)
     yield from _ascending(looked, (*at, "controls"), system.controls, ("lowest_speed", "highest_speed"))
-    for number, (low, high) in enumerate(pairwise(compressor.stages)):
+    for number, (low, high) in enumerate(pairwise(compressor.steps)):
         if high <= low:
             yield looked.positions.problem((*path, "stages", number + 1), "stages must rise one after the other")
+    if compressor.stages and not compressor.stages[0] > 0.0:
+        yield looked.positions.problem((*path, "stages", 0), "a stage of nothing is a compressor that stands still")
+    if compressor.stages and compressor.stages[-1] < 1.0:
+        message = "the last stage is that of all compressors at full load"
+        yield looked.positions.problem((*path, "stages", len(compressor.stages) - 1), message, allowed="100 %")
     if compressor.polynomial and compressor.table:
         message = "polynomials and table say the same; write one of them"
         yield looked.positions.problem((*path, "table"), message, at_key=True)

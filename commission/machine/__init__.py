@@ -16,6 +16,7 @@ from commission.machine.operating_point import Balance, Media, OperatingPoint, S
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
 from commission.machine.single_stage import FREE, HELD, LIMITED, LOWEST, REGULATED, SingleStage
 from commission.machine.solver import NoSolutionError, Solution, solve
+from commission.machine.stages import Stage, stage_of, staged
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream
 from commission.machine.transcritical import Transcritical
 from commission.machine.wet_air import LeavingAir, coil_conductance, leaving_air
@@ -43,6 +44,7 @@ __all__ = [
     "PressureBy",
     "SingleStage",
     "Solution",
+    "Stage",
     "StatePoint",
     "Stream",
     "SuctionLine",
@@ -62,6 +64,8 @@ __all__ = [
     "liquid_stream",
     "operating_map",
     "solve",
+    "stage_of",
+    "staged",
     "ten_coefficients",
     "within_reach",
 ]

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import NamedTuple
 
 from commission.errors import NotCalculatedError
@@ -146,3 +146,11 @@ class Compressor:
         isentropic *= 1 - self.leak
         enthalpy = suction.h + (power - loss) / flow
         return Compression(flow, power, loss, enthalpy, work, ratio, volumetric, isentropic, end)
+
+    def staged(self, displacement: float, power: float) -> Compressor:
+        """The compressor with shares (0-1) of its displacement and of its power between the same pressures."""
+        return replace(
+            self,
+            displacement=self.displacement * displacement,
+            isentropic_level=self.isentropic_level * (displacement / power),
+        )

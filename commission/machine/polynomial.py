@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from commission.errors import NotCalculatedError
 from commission.machine.compressor import Compression
@@ -112,6 +112,15 @@ class PolynomialCompressor:
             volumetric_efficiency=flow / (self.displacement * speed_share * suction.rho) if self.displacement else None,
             isentropic_efficiency=flow * work / power,
             isentropic_end=end,
+        )
+
+    def staged(self, displacement: float, power: float) -> PolynomialCompressor:
+        """The compressor with shares (0-1) of its displacement and of its power between the same pressures."""
+        return replace(
+            self,
+            flow_level=self.flow_level * displacement,
+            isentropic_level=self.isentropic_level * (displacement / power),
+            displacement=self.displacement * displacement if self.displacement else None,
         )
 
     def _unit(self, temperature: float) -> float:

@@ -83,12 +83,16 @@ def work_through(
 ) -> Visit:
     """A visit whose readings are what is expected, with these instruments; uncertainties of the `counted` keys.
 
+    The capacity stage is that at which the model is rated.
+
     Raises:
         NotCalculatedError: the model has no balance there, or an assumption within its range has none.
     """
     from commission.acceptance import Reading, evaluate
 
-    expected = model.predict(dict(conditions)).expected
+    steps = {k: axis.rated for k, axis in model.condition_axes.items() if axis.steps}
+    conditions = {**steps, **conditions}
+    expected = model.predict(conditions).expected
     asked = [Reading(k, v, instruments.get(k)) for k, v in conditions.items()]
     read = [Reading(k, expected[k].value, instruments.get(k)) for k in readings if k in expected]
     found = evaluate(loaded, model, asked, read)

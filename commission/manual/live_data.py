@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 from markupsafe import Markup
 
-from commission.description.model import Medium
+from commission.description.model import NEAR_A_STAGE, Medium
 from commission.errors import NotCalculatedError
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.live_bands import TWO_SIDED, Bands, make_bands
@@ -52,7 +52,7 @@ def calculate(plant: PlantData, model: SystemModel, plan: LivePlan) -> Calculate
     """
     axes = grid_axes(plan.axes)
     rated = {k: r for k, (_, r, _) in plan.extras.items()}
-    ask = Asked(model, plan.conditions)
+    ask = Asked(model, plan.tabulated)
     way = along_the_way(list(axes.values()))
     answers = ask([(*p, *rated.values()) for p in way])
     found = {p: answers[(*p, *rated.values())] for p in way}
@@ -82,7 +82,7 @@ def live_data(
     from commission.records.read import READING_KEYS
 
     instruments, shown = plant.loaded.plant.instruments, data.display
-    judged = None if expected is None else {k for bands in expected["bands"] for k in bands}
+    judged = None if expected is None else {k for t in expected["tables"] for bands in t["bands"] for k in bands}
     air = {k for k, side in APPROACHES.items() if getattr(data.system, side).medium == "air"}
     derived = [k for k in DERIVED if k not in plan.readings and (k not in air if judged is None else k in judged)]
     keys = [*plan.conditions, *plan.readings, *DERIVED, "barometric_pressure"]
@@ -204,7 +204,19 @@ def _steady(data: SystemData) -> dict[str, float]:
     return {s.key: s.limit for s in checks if s.key in ("since_start", "since_defrost")}
 
 
-def expected_data(found: Calculated) -> dict[str, Any]:
+def expected_data(plant: PlantData, model: SystemModel, plan: LivePlan) -> dict[str, Any]:
+    """The tables of the plan as plain data: one, or one for each capacity stage.
+
+    Raises:
+        NotCalculatedError: nothing can be expected anywhere in the range; the message says why.
+    """
+    for key, steps in plan.steps.items():
+        tables = [table_data(calculate(plant, model.rated_at(key, step), plan)) for step in steps]
+        return {"steps": {"key": key, "at": [_short(s) for s in steps], "near": NEAR_A_STAGE}, "tables": tables}
+    return {"steps": None, "tables": [table_data(calculate(plant, model, plan))]}
+
+
+def table_data(found: Calculated) -> dict[str, Any]:
     """Table and bands as plain data."""
     table, bands, extras = found.table, found.bands, found.table.extras.items()
     return {

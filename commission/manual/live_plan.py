@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from commission.quantities import NOMENCLATURE, Kind
@@ -53,7 +53,8 @@ _HUMIDITY_RANGE = 0.15
 @dataclass(frozen=True, slots=True)
 class LivePlan:
     """Keys of the nomenclature. `axes` gives low, rated and high value of at most three conditions, `extras` the same
-    of further ones that are measured here, `held` the value of those that are not; `readings` are read directly,
+    of further ones that are measured here, `held` the value of those that are not; `steps` are the values of one that
+    can have no others (capacity stages), for each of which there is a table; `readings` are read directly,
     `instruments` names what reads each, None where the plant has nothing for it."""
 
     axes: Mapping[str, tuple[float, float, float]]
@@ -61,11 +62,17 @@ class LivePlan:
     held: Mapping[str, float]
     readings: tuple[str, ...]
     instruments: Mapping[str, str | None]
+    steps: Mapping[str, tuple[float, ...]] = field(default_factory=dict)
+
+    @property
+    def tabulated(self) -> tuple[str, ...]:
+        """The conditions over which each table is made."""
+        return (*self.axes, *self.extras)
 
     @property
     def conditions(self) -> tuple[str, ...]:
         """Everything that is asked of the day."""
-        return (*self.axes, *self.extras)
+        return (*self.axes, *self.steps, *self.extras)
 
 
 def make_plan(loaded: LoadedPlant, model: SystemModel, rated: Prediction) -> LivePlan:
@@ -73,16 +80,18 @@ def make_plan(loaded: LoadedPlant, model: SystemModel, rated: Prediction) -> Liv
     system = loaded.system(model.system_id)
     temperatures = [k for k in model.condition_axes if NOMENCLATURE[k].kind is Kind.TEMPERATURE]
     axes = [*temperatures, *(k for k in model.condition_axes if k == SPEED)][:MOST_AXES]
-    others = [k for k in model.condition_axes if k not in axes]
+    steps = {k: a.steps for k, a in model.condition_axes.items() if a.steps}
+    others = [k for k in model.condition_axes if k not in axes and k not in steps]
     extras = [k for k in others if k in system.measured_with or _liquid_flow(k, system)]
     values = {**rated.conditions, **{k: e.value for k, e in rated.expected.items()}}
-    readings = readings_of(loaded, system, values, frozenset((*axes, *others)))
+    readings = readings_of(loaded, system, values, frozenset(model.condition_axes))
     return LivePlan(
         {k: (a.low, a.rated, a.high) for k, a in model.condition_axes.items() if k in axes},
         {k: _around(k, model) for k in extras},
         {k: model.condition_axes[k].rated for k in others if k not in extras},
         readings,
         instruments_of(loaded, system, (*axes, *extras, *readings), values),
+        steps,
     )
 
 

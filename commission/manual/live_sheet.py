@@ -12,7 +12,7 @@ from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.live_data import as_script, calculate, expected_data, live_data
+from commission.manual.live_data import as_script, expected_data, live_data
 from commission.manual.live_plan import HOW, LivePlan, bare_plan, make_plan
 from commission.manual.showing import unit_of
 from commission.manual.store import Store, kept, package_digest
@@ -69,6 +69,7 @@ def live_sheet(plant: PlantData, data: SystemData, store: Store | None = None) -
             (data.display.label(k), data.display.of(k, low), data.display.of(k, high))
             for k, (low, _, high) in {**plan.axes, **plan.extras}.items()
         ],
+        "steps": [(label_of(k), [plant.display.of(k, s) for s in steps]) for k, steps in plan.steps.items()],
         "stages": _stages(plant, data),
         "sheets": content["sheets"],
         "data": as_script(content),
@@ -81,7 +82,7 @@ def _answer(plant: PlantData, model: SystemModel, plan: LivePlan) -> bytes:
     """What is expected, or why nothing is, as JSON."""
     answer: dict[str, Any] = {"expected": None, "because": None}
     try:
-        answer["expected"] = expected_data(calculate(plant, model, plan))
+        answer["expected"] = expected_data(plant, model, plan)
     except NotCalculatedError as error:
         answer["because"] = str(error)
     return json.dumps(answer).encode()

@@ -14,6 +14,7 @@ from commission.machine import (
     SingleStage,
     SuctionLine,
     Transcritical,
+    stage_of,
     within_reach,
 )
 from commission.prediction.compressors import compressor_of
@@ -74,6 +75,9 @@ def build(facts: Facts, a: Mapping[str, float], levels: Levels, rated: Rated) ->
         surroundings=surroundings,
         power_factor=cos_phi if cos_phi is not None else a["power_factor"],
         frost_share=a["frost_share"] if facts.heats_from_air else 0.0,
+        machines=system.compressor.count,
+        stage=stage_of(1.0, system.compressor.count, 0.0),
+        unloading_loss=a["compressor_unloading_loss"] if unloads(facts) else 0.0,
     )
 
 
@@ -81,6 +85,13 @@ def superheat_setting(facts: Facts, a: Mapping[str, float]) -> float:
     """Superheat in K that the valve is set to, as it may really be held."""
     stated = facts.system.expansion.superheat if facts.system.expansion else None
     return a["evaporator_superheat"] if stated is None else stated + a["superheat_departure"]
+
+
+def unloads(facts: Facts) -> bool:
+    """Whether a stage leaves one of the compressors partly loaded; else each of them runs whole or stands still."""
+    compressor = facts.system.compressor
+    machines = [step * compressor.count for step in compressor.steps]
+    return any(abs(m - round(m)) > 1e-9 for m in machines)
 
 
 MOST_COOLED = 0.85

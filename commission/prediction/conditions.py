@@ -10,7 +10,7 @@ from itertools import pairwise
 from commission.description import outdoor_sides
 from commission.errors import InputError, Problem, nearest
 from commission.prediction.facts import Facts
-from commission.prediction.plan import Plan
+from commission.prediction.plan import STAGE, Plan
 from commission.prediction.rated import Case
 from commission.prediction.streams import once_through
 from commission.properties import moist_air
@@ -22,12 +22,16 @@ HUMIDITY, WET_BULB = "heat_source_relative_humidity", "heat_source_wet_bulb"
 
 @dataclass(frozen=True, slots=True)
 class ConditionAxis:
-    """One quantity of the condition, SI: its rated value and the range over which expectations are shown."""
+    """One quantity of the condition, SI: its rated value and the range over which expectations are shown.
+
+    `steps` are all the values that it can have, where there are only some (capacity stages).
+    """
 
     key: str
     rated: float
     low: float
     high: float
+    steps: tuple[float, ...] = ()
 
 
 def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]:
@@ -50,7 +54,7 @@ def axes_of(facts: Facts, plan: Plan, case: Case) -> Mapping[str, ConditionAxis]
         axes.append(ConditionAxis("heat_sink_outlet_temperature", hot, hot - 15.0, hot + 15.0))
     axes += [ConditionAxis(key, flow, 0.5 * flow, 1.2 * flow) for key, flow in flows]
     speed = _speed_axis(facts, rated.speed and _stated(facts, case, "compressor_speed", rated.speed))
-    return {axis.key: axis for axis in (*axes, *speed)}
+    return {axis.key: axis for axis in (*axes, *speed, *_stage_axis(facts, case))}
 
 
 def _stated(facts: Facts, case: Case, key: str, otherwise: float) -> float:
@@ -75,6 +79,16 @@ def _speed_axis(facts: Facts, rated: float | None) -> tuple[ConditionAxis, ...]:
     low = controls.lowest_speed or stated.minimum_speed or 0.4 * rated
     high = controls.highest_speed or stated.maximum_speed or 1.2 * rated
     return (ConditionAxis("compressor_speed", rated, min(low, rated), max(high, rated)),)
+
+
+def _stage_axis(facts: Facts, case: Case) -> tuple[ConditionAxis, ...]:
+    """The capacity stage, where there are several."""
+    steps = facts.system.compressor.steps
+    if len(steps) < 2:
+        return ()
+    stated = _stated(facts, case, STAGE, case.conditions.get(STAGE, steps[-1]))
+    rated = facts.system.compressor.step_near(stated)
+    return (ConditionAxis(STAGE, steps[-1] if rated is None else rated, steps[0], steps[-1], steps),)
 
 
 def _design(facts: Facts, plan: Plan, case: Case, side: str) -> tuple[str, float]:

@@ -68,6 +68,9 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     found = Found(values, {})
     _high_side(plan, point, found)
     _add(found, "current", lambda: _current(facts, plan, power))
+    if facts.system.compressor.count > 1:
+        each = plan.stage.each * balance.compression.power
+        _add(found, "compressor_current", lambda: _current(facts, plan, each))
     _media(facts, plan, media, balance, found)
     if facts.heats_from_air:
         _frost(facts, plan, media, point, found)

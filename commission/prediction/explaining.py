@@ -35,6 +35,7 @@ METHOD: Mapping[str, str] = {
     "fan_power": "fan_power",
     "power_input": "power_input",
     "current": "current_from_power",
+    "compressor_current": "current_from_power",
     "cooling_cop": "cop",
     "heating_cop": "cop",
     "heating_capacity_with_defrosts": "frost_share",
@@ -87,6 +88,7 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "compressor_power": ("refrigerant_flow", "suction_temperature", "suction_pressure", "discharge_pressure"),
     "power_input": ("compressor_power", "fan_power"),
     "current": ("power_input",),
+    "compressor_current": ("compressor_power",),
     "cooling_cop": ("cooling_capacity", "power_input"),
     "heating_cop": ("heating_capacity", "power_input"),
     "heating_capacity_with_defrosts": ("heating_capacity",),
@@ -109,6 +111,8 @@ _MEDIA: Mapping[str, tuple[str, ...]] = {
         "heat_source_flow",
     ),
     "condensing_temperature": ("heat_sink_inlet_temperature", "heat_sink_flow"),
+    "refrigerant_flow": ("compressor_stage",),
+    "compressor_power": ("compressor_stage",),
     "evaporator_temperature_difference": ("heat_source_inlet_temperature",),
     "condenser_temperature_difference": ("heat_sink_inlet_temperature",),
     "evaporator_approach": ("heat_source_outlet_temperature",),
@@ -245,10 +249,11 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
                 ("fan_power", "net_cooling_capacity") if "evap" in path else ("fan_power",),
                 facts.input(word, part.fan_power, Kind.POWER, path),
             )
+    currents = ("current", "compressor_current")
     if system.nameplate.voltage is not None:
-        add(("current",), facts.input("voltage", system.nameplate.voltage, Kind.VOLTAGE, "nameplate.voltage"))
+        add(currents, facts.input("voltage", system.nameplate.voltage, Kind.VOLTAGE, "nameplate.voltage"))
     add(
-        ("current",),
+        currents,
         Input(
             "power factor",
             fit.plan.power_factor,

@@ -127,8 +127,6 @@ def left_out(facts: Facts) -> tuple[str, ...]:
         )
     if system.controls.evaporator_pressure_regulator is not None:
         notes.append("the evaporator pressure regulator is not in the model: the values hold while it is wide open")
-    if system.compressor.stages:
-        notes.append("capacity stages are not in the model: the values hold with all stages on")
     if system.compressor.drive == "variable speed" and system.compressor.nominal_speed is None:
         rated = any(point.compressor_speed is not None for point in system.rated_points)
         if not rated:

@@ -131,6 +131,7 @@ def with_fault(model: SystemModel, key: str, size: float) -> SystemModel:
 
 def _rated_feed(model: SystemModel, plan: Plan) -> float:
     """Effective area in m2 that the valve has open at the rated condition."""
-    if not isinstance(plan.machine, SingleStage):
+    machine = plan.at(model.rated_condition).machine
+    if not isinstance(machine, SingleStage):
         return 0.0
-    return plan.machine.restriction_for(media(model.facts, plan, model.rated_condition))
+    return machine.restriction_for(media(model.facts, plan, model.rated_condition))

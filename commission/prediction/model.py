@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Collection, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, fields, replace
 
 from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
@@ -17,11 +17,11 @@ from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, fros
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
 from commission.prediction.operation import told_of_operation
-from commission.prediction.plan import Plan
+from commission.prediction.plan import STAGE, Plan
 from commission.prediction.rated import reference
 from commission.prediction.refusals import cannot_be, fitted, walk
 from commission.prediction.settings import HeldOff, held_off
-from commission.prediction.streams import media
+from commission.prediction.streams import at_a_stage, media
 from commission.properties import Refrigerant
 from commission.quantities import Explained, Input, Kind
 
@@ -98,6 +98,12 @@ class SystemModel:
         """The rated value of each condition, SI."""
         return {key: axis.rated for key, axis in self.condition_axes.items()}
 
+    def rated_at(self, key: str, value: float) -> SystemModel:
+        """The same model with another rated value of one condition (SI), such as one of its capacity stages."""
+        axis = replace(self.condition_axes[key], rated=value)
+        rest = {f.name: getattr(self, f.name) for f in fields(self)}
+        return SystemModel(**{**rest, "condition_axes": {**self.condition_axes, key: axis}})
+
     def along(self, key: str) -> dict[str, float]:
         """What stays as rated while the condition `key` varies, SI: all others, but for what the controls set by it
         (the flow temperature of a weather curve), which is to be left to them."""
@@ -168,7 +174,7 @@ class SystemModel:
         """Change of each expected quantity per unit of each condition, SI, by central differences.
 
         At the edge of a regime (head pressure just held) the two sides differ; the mean of both is given. At the edge
-        of what can be calculated the difference to the one side that can be is given.
+        of what can be calculated the difference to the one side that can be is given. A capacity stage has no slope.
 
         Raises:
             InputError, NotCalculatedError: as `predict`.
@@ -177,6 +183,8 @@ class SystemModel:
         at, start = self._solved(whole)
         table: dict[str, dict[str, float]] = {}
         for key in whole:
+            if key == STAGE:
+                continue
             step = 0.1 if NOMINAL_STEP.get(key, 0.0) == 0.0 else NOMINAL_STEP[key] * whole[key]
             low, below = self._beside(whole, key, -step, at, start)
             high, above = self._beside(whole, key, step, at, start)
@@ -244,7 +252,8 @@ class SystemModel:
         self, conditions: Mapping[str, float] | None
     ) -> tuple[dict[str, float], tuple[str, ...], tuple[str, ...]]:
         given, note = with_weather_curve(self.facts, self.condition_axes, conditions or {})
-        whole, filled, outside = complete(self.condition_axes, given, self.facts.pressure, self.facts.shown.quantities)
+        asked, filled, outside = complete(self.condition_axes, given, self.facts.pressure, self.facts.shown.quantities)
+        whole = at_a_stage(self.facts, asked)
         why = cannot_be(self.facts, whole)
         if why is not None:
             raise NotCalculatedError(why)
@@ -264,6 +273,7 @@ class SystemModel:
     def _values(
         self, plan: Plan, whole: Mapping[str, float], start: OperatingPoint | None
     ) -> tuple[Found, OperatingPoint]:
+        plan = plan.at(whole)
         around = media(self.facts, plan, whole)
         point = plan.machine.operate(around, start.balance if start is not None else None)
         return expected_values(self.facts, plan, around, point), point

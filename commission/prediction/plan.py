@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
 
-from commission.machine import Media, SingleStage, Transcritical
+from commission.machine import Media, SingleStage, Stage, Transcritical, stage_of, staged
 
 Machine = SingleStage | Transcritical
+STAGE = "compressor_stage"
+WHOLE = Stage()
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,7 +78,10 @@ class Rated:
 
 @dataclass(frozen=True, slots=True)
 class Plan:
-    """All of one system that a prediction needs, for one set of assumption values and levels."""
+    """All of one system that a prediction needs, for one set of assumption values and levels.
+
+    `machines` equal compressors work on it; `unloading_loss` is the power of an unloaded one over that at full load.
+    """
 
     machine: Machine
     fans: Fans
@@ -85,6 +91,18 @@ class Plan:
     power_factor: float
     frost_share: float = 0.0
     """Share of the heat that frost and defrosts take at 2 °C in damp air."""
+    machines: int = 1
+    unloading_loss: float = 0.0
+    stage: Stage = WHOLE
+    """The stage at which `machine` is, all of it as it is fitted."""
+
+    def at(self, conditions: Mapping[str, float]) -> Plan:
+        """The plan of the whole machine at the stage of a condition (keys of the nomenclature, SI)."""
+        share = conditions.get(STAGE, 1.0)
+        if share == 1.0:
+            return self
+        stage = stage_of(share, self.machines, self.unloading_loss)
+        return replace(self, machine=staged(self.machine, stage), stage=stage)
 
     @property
     def own_conditions(self) -> dict[str, float]:

@@ -126,7 +126,7 @@ def _start(problem: Problem, a: Mapping[str, float], rated: Rated) -> Levels:
     facts, case = problem.facts, problem.cases[problem.reference]
     given = {d.of: d.value for d in case.data}
     evaporating, condensing = _dew_points(problem, a, rated, given)
-    plan = build(facts, a, Levels(1.0, 1.0, 1.0, 1.0), rated)
+    plan = build(facts, a, Levels(1.0, 1.0, 1.0, 1.0), rated).at(case.conditions)
     conditions = {**case.conditions, "heat_source_inlet_temperature": rated.source_temperature}
     compression, source, _ = plan.machine.cycle(evaporating, condensing, media(facts, plan, conditions))
     if isinstance(plan.machine, Transcritical):
@@ -173,7 +173,7 @@ def _gas_cooler_start(
     if problem.fixed_compressor:
         isentropic = 1.0
     small = replace(around, sink=replace(around.sink, capacity_rate=around.sink.capacity_rate / swept))
-    slow = build(facts, a, Levels(1.0, isentropic, 1.0, 1.0), rated).machine
+    slow = build(facts, a, Levels(1.0, isentropic, 1.0, 1.0), rated).at(case.conditions).machine
     assert isinstance(slow, Transcritical)
     conductance = swept * slow.cycle_conductance(evaporating, outlet, small)
     evaporator = _evaporator(facts, a, rated, case)
@@ -291,5 +291,7 @@ def restricted(problem: Problem, plan: Plan) -> Plan:
         conditions.setdefault("heat_sink_inlet_temperature", plan.rated.sink_temperature)
     if "heat_source_outlet_temperature" in case.conditions:
         del conditions["heat_source_inlet_temperature"]
-    size = machine.restriction_for(media(problem.facts, plan, conditions))
+    here = plan.at(conditions).machine
+    assert isinstance(here, SingleStage)
+    size = here.restriction_for(media(problem.facts, plan, conditions))
     return replace(plan, machine=replace(machine, restriction=size))

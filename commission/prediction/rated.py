@@ -11,9 +11,9 @@ from commission.errors import NotCalculatedError
 from commission.prediction.compressors import estimate
 from commission.prediction.facts import COMPRESSOR, CONDENSER_FAN, Facts
 from commission.prediction.frost import counts_defrosts
-from commission.prediction.plan import Rated
+from commission.prediction.plan import STAGE, Rated
 from commission.prediction.ratings import MEAN_BELOW_DEW, rating_difference
-from commission.prediction.streams import SINK_HUMIDITY, flow_for, humidity, once_through, stream
+from commission.prediction.streams import SINK_HUMIDITY, at_a_stage, flow_for, humidity, once_through, stream
 from commission.properties import moist_air
 
 MARGIN = 0.015
@@ -125,7 +125,7 @@ def _design_case(facts: Facts) -> Case:
     design = facts.system.design
     conditions = {}
     if design is not None:
-        conditions = {k: v for k in Conditions.model_fields if (v := getattr(design, k)) is not None}
+        conditions = {k: v for k in Conditions.model_fields if k != STAGE and (v := getattr(design, k)) is not None}
     for side in ("heat_source", "heat_sink"):
         if not {f"{side}_inlet_temperature", f"{side}_outlet_temperature"} & set(conditions):
             raise NotCalculatedError(
@@ -141,7 +141,8 @@ def _design_case(facts: Facts) -> Case:
 
 def _system_case(facts: Facts, number: int, point: RatedPoint) -> Case:
     path = f"rated_points.{number}"
-    conditions = {key: value for key in Conditions.model_fields if (value := getattr(point, key)) is not None}
+    stated = {key: value for key in Conditions.model_fields if (value := getattr(point, key)) is not None}
+    conditions = at_a_stage(facts, stated)
     for side in ("heat_source", "heat_sink"):
         if not {f"{side}_inlet_temperature", f"{side}_outlet_temperature"} & set(conditions):
             raise NotCalculatedError(
@@ -237,8 +238,11 @@ def _unit_cases(facts: Facts, unit: CondensingUnit) -> tuple[Case, ...]:
 
 
 def reference(cases: tuple[Case, ...]) -> int:
-    """Number of the case nearest to the middle of all that have media: the assumed differences belong to it."""
+    """Number of the case nearest to the middle of all that have media, of those with all compressors on where there are
+    such: the assumed differences belong to it."""
     whole = [n for n, c in enumerate(cases) if c.unit is None or c.unit.condensing is None]
+    highest = max(cases[n].conditions.get(STAGE, 1.0) for n in whole)
+    whole = [n for n in whole if cases[n].conditions.get(STAGE, 1.0) == highest]
     middle = [
         sum(cases[n].source_temperature for n in whole) / len(whole),
         sum(cases[n].sink_temperature for n in whole) / len(whole),

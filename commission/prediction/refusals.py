@@ -10,6 +10,7 @@ from commission.machine import OperatingPoint
 from commission.machine.solver import NoSolutionError
 from commission.prediction.expected import Found
 from commission.prediction.facts import Facts
+from commission.prediction.plan import STAGE
 from commission.properties import Liquid
 from commission.properties.errors import PropertyRangeError
 
@@ -28,6 +29,11 @@ def cannot_be(facts: Facts, conditions: Values) -> str | None:
         label, shown = facts.shown.words(key), facts.shown.of(key, value)
         if key.endswith(("_flow", "_speed")) and value <= 0:
             return f"{label} of {shown} cannot be: it must be above zero"
+        steps = facts.system.compressor.steps
+        if key == STAGE and value not in steps:
+            known = ", ".join(facts.shown.of(key, step) for step in steps)
+            near = facts.shown.of(key, min(steps, key=lambda step: abs(step - value)))
+            return f"{label} of {shown} cannot be: the stages are {known}, and the nearest is {near}"
         if key.endswith("_humidity") and not 0 <= value <= 1:
             return f"{label} of {shown} cannot be: it lies between 0 and 100 %"
         if key.endswith("_temperature"):
@@ -69,7 +75,7 @@ def walk(
             "already at the rated condition no steady operation is found: check the design condition against the rated "
             "points"
         ) from error
-    start = {k: rated.get(k, last[0].values.get(k, v)) for k, v in whole.items()}
+    start = {k: v if k == STAGE else rated.get(k, last[0].values.get(k, v)) for k, v in whole.items()}
     done, step, refused = 0.0, 0.5, 0
     while done < 1.0:
         tried = min(done + step, 1.0)

@@ -41,6 +41,7 @@ def simulate(facts: Facts, a: Mapping[str, float], plan: Plan, case: Case, start
     if "heat_source_outlet_temperature" in case.conditions:
         conditions.pop("heat_source_inlet_temperature")
     if case.unit is None:
+        plan = plan.at(conditions)
         around = media(facts, plan, conditions)
         balance = plan.machine.balance(around, near)
         fans = plan.fans_at(around).counted(balance.sink_fan_share)

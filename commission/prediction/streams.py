@@ -8,7 +8,7 @@ from dataclasses import replace
 from commission.errors import NotCalculatedError
 from commission.machine import Media, Stream, air_stream, liquid_stream
 from commission.prediction.facts import Facts
-from commission.prediction.plan import Plan
+from commission.prediction.plan import STAGE, Plan
 from commission.properties import Liquid
 
 KELVIN = 273.15
@@ -78,6 +78,12 @@ def _side(
     if outlet <= temperature:
         raise NotCalculatedError("the medium would have to leave colder than it came")
     return replace(one, outlet_wanted=outlet)
+
+
+def at_a_stage(facts: Facts, conditions: Mapping[str, float]) -> dict[str, float]:
+    """The condition with the stage that a rounded share means; one that means none is left as it is."""
+    step = facts.system.compressor.step_near(conditions[STAGE]) if STAGE in conditions else None
+    return {**conditions, STAGE: step} if step is not None else dict(conditions)
 
 
 def lifts(facts: Facts) -> bool:

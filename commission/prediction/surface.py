@@ -31,10 +31,10 @@ def operating_surface(
     for key in others or {}:
         if key not in model.condition_axes:
             raise InputError(Problem("this is no condition of this system", value=key))
-    plan = model.fit.plan
+    rest = {**model.rated_condition, **(others or {})}
+    plan = model.fit.plan.at(rest)
     if not isinstance(plan.machine, SingleStage):
         raise NotCalculatedError("a map is made of machines with one stage and a condenser only")
-    rest = {**model.rated_condition, **(others or {})}
     along = [media(model.facts, plan, {**rest, source[0]: value}) for value in source[1]]
     across = [media(model.facts, plan, {**rest, sink[0]: value}) for value in sink[1]]
     if not along or not across:

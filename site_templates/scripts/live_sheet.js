@@ -158,10 +158,14 @@
   function sayCondition(expectation, humidity) {
     var names = expectation.keys ? expectation.keys.map(small).join(", ") : "", parts = [];
     if (expectation.why === "lacking") {
-      var speed = expectation.keys.length === 1 && expectation.keys[0] === "compressor_speed";
-      parts.push(element("p", "", speed && ticked("unknown-compressor_speed")
-        ? "Without the compressor speed the page expects nothing: when the record is filed the speed is inferred from the power."
+      var told = expectation.keys.length === 1 && ["compressor_speed", "compressor_stage"].indexOf(expectation.keys[0]) >= 0;
+      parts.push(element("p", "", told && ticked("unknown-" + expectation.keys[0])
+        ? "Without the " + names + " the page expects nothing: when the record is filed it is inferred from the power."
         : "Type " + names + ": without that nothing can be expected."));
+    } else if (expectation.why === "no step") {
+      parts.push(element("p", "say-open", "There is no such " + names + ": its steps are " + data.expected.steps.at.map(function (x) {
+        return show(expectation.keys[0], x) + " " + kind(expectation.keys[0]).shown;
+      }).join(", ") + "."));
     } else if (expectation.why === "beyond") {
       parts.push(element("p", "say-open", "Outside what was tabulated: " + names + ". Nothing is shown; the record is judged when it is filed."));
     } else if (expectation.why === "no balance") {

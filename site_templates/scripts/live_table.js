@@ -3,8 +3,17 @@
    Classic script, no dependency. */
 var commissionLiveTable = function (data) {
   "use strict";
-  var expected = data.expected;
-  (expected ? expected.series : []).forEach(function (series, n) { if (series) { spreadOut(series, n.toString(36)); } });
+  var expected = null, tables = data.expected ? data.expected.tables : [], steps = data.expected ? data.expected.steps : null;
+  tables.forEach(function (table) {
+    expected = table;
+    table.series.forEach(function (series, n) { if (series) { spreadOut(series, n.toString(36)); } });
+  });
+
+  /* The table in force: the only one, or that of the capacity stage at which the machine runs; null where it has no such stage. */
+  function tableAt(x) {
+    var near = steps.at.map(function (step) { return Math.abs(step - x); }), least = Math.min.apply(null, near);
+    return least <= steps.near ? tables[near.indexOf(least)] : null;
+  }
 
   /* What a series leaves is carried for the points of its own regime; it is nothing at the others. */
   function spreadOut(series, sign) {
@@ -120,8 +129,14 @@ var commissionLiveTable = function (data) {
 
   /* Everything that is expected at the conditions; `why` says why nothing is. `conditions` by key, null: not known. */
   function expect(conditions) {
-    var point = [], missing = [], lacking = [], beyond = [];
-    if (!expected) { return { why: "nothing", keys: [] }; }
+    var point = [], missing = [], lacking = [], beyond = [], step = steps ? conditions[steps.key] : null;
+    if (!tables.length) { return { why: "nothing", keys: [] }; }
+    expected = tables[0];
+    if (steps) {
+      if (step === null || step === undefined) { lacking.push(steps.key); }
+      else if (!tableAt(step)) { return { why: "no step", keys: [steps.key] }; }
+      else { expected = tableAt(step); }
+    }
     expected.axes.forEach(function (axis) {
       var x = conditions[axis.key];
       if (x === null || x === undefined) { lacking.push(axis.key); }

@@ -166,3 +166,21 @@ systems:
          heating_capacity: 10 kW, power_input: 2.7 kW, includes: [compressor, evaporator fan]}
 """
 """A carbon dioxide water heater, transcritical, rated by the outlet of its sink."""
+
+
+STAGED = CHILLER.replace(
+    "compressor: {type: scroll}", "compressor: {type: scroll, count: 3, stages: [33 %, 67 %, 100 %]}"
+)
+"""The chiller with three compressors that are switched on one after the other."""
+
+
+@pytest.fixture(scope="session")
+def staged_plant(tmp_path_factory: pytest.TempPathFactory) -> LoadedPlant:
+    """The chiller with three compressors as read from its file."""
+    return write_plant(tmp_path_factory.mktemp("staged"), STAGED)
+
+
+@pytest.fixture(scope="session")
+def staged_model(staged_plant: LoadedPlant) -> SystemModel:
+    """The fitted chiller with three compressors."""
+    return fit(staged_plant, "chiller")

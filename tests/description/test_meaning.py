@@ -246,8 +246,23 @@ FAULTS: dict[str, tuple[Callable[[dict[str, Any]], object], str, str]] = {
         "systems.one.compressor.maximum_speed",
         "below the minimum_speed",
     ),
+    "stages that end below full load": (
+        lambda d: one(d).update(compressor={"stages": ["50 %", "75 %"]}),
+        "systems.one.compressor.stages.1",
+        "full load",
+    ),
+    "stage of nothing": (
+        lambda d: one(d).update(compressor={"stages": ["0 %", "100 %"]}),
+        "systems.one.compressor.stages.0",
+        "stands still",
+    ),
+    "stage that the compressor does not have": (
+        lambda d: one(d).update(compressor={"stages": ["50 %", "100 %"]}, design={"compressor_stage": "75 %"}),
+        "systems.one.design.compressor_stage",
+        "no such stage",
+    ),
     "stages out of order": (
-        lambda d: one(d).update(compressor={"stages": ["100 %", "50 %"]}),
+        lambda d: one(d).update(compressor={"stages": ["75 %", "50 %", "100 %"]}),
         "systems.one.compressor.stages.1",
         "must rise",
     ),

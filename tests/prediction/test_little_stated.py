@@ -160,7 +160,7 @@ def test_capacity_heat_and_power_together_leave_one_degree_of_freedom(written: W
 
 def test_nothing_stated_is_left_out_silently(written: Written) -> None:
     """A stated part that the model does not carry is named with every prediction, or refused with the reason."""
-    text = CHILLER.replace("{type: screw}", "{type: screw, stages: [50 %, 100 %]}")
-    assert any("stages" in w for w in fit(written(text), "it").predict().warnings)
+    text = CHILLER + "controls: {evaporator_pressure_regulator: 2 bar g}\n"
+    assert any("wide open" in w for w in fit(written(text), "it").predict().warnings)
     with pytest.raises(NotCalculatedError, match="wet bulb"):
         fit(written(CHILLER + "condenser: {type: evaporative}\n"), "it")

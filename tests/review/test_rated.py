@@ -224,6 +224,19 @@ def test_a_variable_speed_has_no_known_volume_flow(facts: Facts) -> None:
     assert not list(efficiency.implied_volumetric(facts({"rated_points": [point], "compressor": compressor})))
 
 
+def test_a_part_stage_tells_no_efficiency(facts: Facts) -> None:
+    """Half the capacity at half stage is no poor volumetric efficiency, and no guarantee of the whole set."""
+    half = {**CYCLE, "cooling_capacity": "1.7 kW", "power_input": "0.8 kW", "compressor_stage": "50 %"}
+    compressor = {"displacement": "16 m3/h", "stages": ["50 %", "100 %"]}
+    here = facts({"rated_points": [half], "compressor": compressor})
+    assert not list(efficiency.implied_volumetric(here))
+    whole = facts({"rated_points": [{**half, "compressor_stage": "100 %"}], "compressor": compressor})
+    assert len(list(efficiency.implied_volumetric(whole))) == 1
+    at_half = {**POINT, "cooling_capacity": "1.8 kW", "compressor_stage": "50 %"}
+    promised = {"guarantee": [PROMISE], "compressor": compressor, "rated_points": [at_half, POINT]}
+    assert not list(guarantees.not_the_table(facts(promised)))
+
+
 PROMISE: dict[str, Any] = {"quantity": "cooling_capacity", "at": AT, "value": "3.4 kW", "tolerance": {"below": "5 %"}}
 
 

@@ -374,5 +374,8 @@ def test_market_dates_go_by_the_rating_and_not_by_full_speed(facts: Facts) -> No
     assert [r.title.split(":")[0] for r in duties.law_dates(at_speed)] == [
         "Split air-to-air systems up to 12 kW with GWP 150 or more"
     ]
+    staged = {**points[1], "compressor_stage": "50 %", "cooling_capacity": "5 kW"}
+    in_stages = facts({**system, "rated_points": [staged, points[1]], "compressor": {"stages": ["50 %", "100 %"]}})
+    assert duties.rated_capacity(in_stages) == pytest.approx(9900.0)
     not_said = facts({**system, "rated_points": points[1:], "compressor": {"drive": "variable speed"}})
     assert duties.rated_capacity(not_said) == pytest.approx(9900.0)

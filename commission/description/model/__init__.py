@@ -4,6 +4,7 @@ from commission.description.model.base import DecisionRule, Document, Duty, Incl
 from commission.description.model.controls import Controls, CurvePoint, GasCoolerPressure, HeadPressure, WeatherCurve
 from commission.description.model.instruments import Accuracy, Instrument
 from commission.description.model.machine import (
+    NEAR_A_STAGE,
     Compressor,
     CompressorPoint,
     CompressorTable,
@@ -39,6 +40,7 @@ from commission.description.model.system import (
 )
 
 __all__ = [
+    "NEAR_A_STAGE",
     "Accuracy",
     "AssumptionOverride",
     "BackUp",

@@ -87,13 +87,22 @@ class EnvelopeCorner(Part):
     condensing_temperature: Temperature = Field(description="dew point at the discharge")
 
 
+NEAR_A_STAGE = 0.02
+"""How far a rounded figure may lie from a stage: 66 % for two of three machines."""
+
+
 class Compressor(Part):
     """What is known of the compressor; what is not is fitted to the rated points or assumed."""
 
     type: Literal["reciprocating", "scroll", "rotary", "screw"] | None = Field(None, description="kind of machine")
     build: Literal["hermetic", "semi-hermetic", "open"] | None = Field(None, description="how the motor is housed")
-    count: Count = Field(1, description="equal compressors that work side by side")
-    stages: tuple[Ratio, ...] = Field((), description="capacity stages of the whole set, such as [50 %, 100 %]")
+    count: Count = Field(1, description="equal compressors that work side by side on one circuit")
+    stages: tuple[Ratio, ...] = Field(
+        (),
+        description="capacity stages of the whole set as shares of its displacement, the last 100 %: [50 %, 75 %, "
+        "100 %] for one machine that unloads, [33 %, 67 %, 100 %] for three; machines are switched on one after the "
+        "other, and only the last of them is unloaded",
+    )
     drive: Literal["fixed speed", "variable speed"] = Field("fixed speed", description="how the motor is fed")
     displacement: VolumeFlow | None = Field(None, description="swept volume flow of one machine at nominal speed")
     nominal_speed: Speed | None = Field(
@@ -110,6 +119,21 @@ class Compressor(Part):
     crankcase_heater: Power | None = Field(None, description="electric power of the crankcase heater")
     oil: str | None = Field(None, description="oil and viscosity")
     oil_charge: Volume | None = Field(None, description="oil charge")
+
+    @property
+    def steps(self) -> tuple[float, ...]:
+        """The stages as shares of the displacement; one that is written of whole machines is just that: 33 % of three
+        is a third."""
+        found = []
+        for stage in self.stages:
+            whole = round(stage * self.count) / self.count
+            found.append(whole if whole and abs(stage - whole) <= NEAR_A_STAGE else stage)
+        return tuple(found)
+
+    def step_near(self, share: float) -> float | None:
+        """The stage that a rounded share of the displacement means; None where there is none so near."""
+        found = min(self.steps, key=lambda step: abs(step - share), default=None)
+        return found if found is not None and abs(found - share) <= NEAR_A_STAGE else None
 
 
 class CoolerRating(Part):

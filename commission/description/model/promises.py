@@ -43,6 +43,7 @@ class Conditions(Part):
     heat_sink_relative_humidity: Ratio | None = Field(None, description=_means("heat_sink_relative_humidity"))
     heat_sink_flow: VolumeFlow | None = Field(None, description=_means("heat_sink_flow"))
     compressor_speed: Speed | None = Field(None, description=_means("compressor_speed"))
+    compressor_stage: Fraction | None = Field(None, description=_means("compressor_stage"))
 
 
 class RatedPoint(Conditions):

@@ -132,10 +132,12 @@ def rated_capacity(facts: SystemFacts) -> float | None:
     """The rated capacity in W: of heat for heating duties, else of cooling; None where none is stated.
 
     A law goes by the rating and not by what the machine can do at full speed: it is the first point that states the
-    capacity, of those at the nominal speed where that is stated. A list begins with the rating.
+    capacity, of those at the nominal speed where that is stated, and with all compressors on. A list begins with the
+    rating.
     """
     key = "cooling_capacity" if facts.cools else "heating_capacity"
     points = [point for point in facts.system.rated_points if getattr(point, key) is not None]
+    points = [p for p in points if p.compressor_stage in (None, 1.0)] or points
     nominal = facts.system.compressor.nominal_speed
     at_nominal = [p for p in points if nominal is not None and _same(p.compressor_speed, nominal)]
     stated: list[float] = [getattr(point, key) for point in at_nominal or points]

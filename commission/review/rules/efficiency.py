@@ -168,8 +168,11 @@ def _of_condensing_unit(facts: SystemFacts) -> Iterator[Duty]:
 
 
 def _of_rated_points(facts: SystemFacts) -> Iterator[Duty]:
+    """Those with all compressors at full load: what unloading costs is no fault of theirs."""
     expansion = facts.system.expansion
     for index, point in facts.rated_points():
+        if point.compressor_stage not in (None, 1.0):
+            continue
         evaporating, condensing = point.evaporating_temperature, point.condensing_temperature
         if evaporating is None or condensing is None or point.cooling_capacity is None:
             continue

@@ -97,6 +97,8 @@ def _table_value(facts: SystemFacts, guarantee: Guarantee) -> float | None:
 
 def _agrees(facts: SystemFacts, at: Mapping[str, float], row: Mapping[str, float]) -> bool:
     """Whether a row holds at `at`: every quantity that both state is the same, and temperatures are stated by both."""
+    if at.get("compressor_stage", 1.0) != row.get("compressor_stage", 1.0):  # all compressors, where it is not stated
+        return False
     shared = at.keys() & row.keys()
     if not {key for key in at if NOMENCLATURE[key].kind is Kind.TEMPERATURE} <= shared:
         return False
