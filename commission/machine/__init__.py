@@ -2,6 +2,7 @@
 
 from commission.machine.circuit import Parts, SuctionLine, between, within_reach
 from commission.machine.compressor import Compression, Compressor, EfficiencyShape
+from commission.machine.condenser_circuit import FREE, HELD, LIMITED, LOWEST, REGULATED
 from commission.machine.exchanger import Exchanger, conductance_for, effectiveness
 from commission.machine.gas_cooler import (
     GasCoolerPressure,
@@ -14,7 +15,7 @@ from commission.machine.head_pressure import HeadPressure
 from commission.machine.maps import OperatingMap, operating_map
 from commission.machine.operating_point import Balance, Media, OperatingPoint, StatePoint
 from commission.machine.polynomial import PolynomialCompressor, in_fahrenheit, ten_coefficients
-from commission.machine.single_stage import FREE, HELD, LIMITED, LOWEST, REGULATED, SingleStage
+from commission.machine.single_stage import SingleStage
 from commission.machine.solver import NoSolutionError, Solution, solve
 from commission.machine.stages import Stage, stage_of, staged
 from commission.machine.streams import Stream, air_stream, carnot_cooling, entropic_mean, liquid_stream

@@ -15,7 +15,7 @@ from itertools import product
 import numpy as np
 from numpy.polynomial import chebyshev
 
-from commission.machine.single_stage import CondenserCircuit
+from commission.machine.condenser_circuit import CondenserCircuit
 from commission.properties import SaturationState, State
 from commission.properties.lines import Array, nodes, series_at_nodes
 

@@ -18,9 +18,10 @@ import numpy as np
 from commission.errors import NotCalculatedError
 from commission.machine.chart import TERMS, Chart, Ends
 from commission.machine.circuit import PINCH, ROUNDING, SMALL
+from commission.machine.condenser_circuit import COLDEST, FREE, CondenserCircuit
 from commission.machine.exchanger import DEPTH, LEAST_WETTED
 from commission.machine.operating_point import Balance, Media
-from commission.machine.single_stage import COLDEST, FREE, CondenserCircuit, SingleStage
+from commission.machine.single_stage import SingleStage
 from commission.machine.streams import Stream
 from commission.machine.wet_air import coil_heats
 from commission.properties.lines import Array
