@@ -69,7 +69,7 @@ def live_sheet(plant: PlantData, data: SystemData, store: Store | None = None) -
             (data.display.label(k), data.display.of(k, low), data.display.of(k, high))
             for k, (low, _, high) in {**plan.axes, **plan.extras}.items()
         ],
-        "steps": [(label_of(k), [plant.display.of(k, s) for s in steps]) for k, steps in plan.steps.items()],
+        "steps": [(data.display.label(k), [data.display.of(k, s) for s in steps]) for k, steps in plan.steps.items()],
         "stages": _stages(plant, data),
         "sheets": content["sheets"],
         "data": as_script(content),

@@ -150,7 +150,7 @@ def test_a_second_build_takes_the_table_from_the_store(
     def never(*_: object) -> None:
         raise AssertionError("calculated again")
 
-    monkeypatch.setattr("commission.manual.live_sheet.calculate", never)
+    monkeypatch.setattr("commission.manual.live_sheet.expected_data", never)
     assert live_sheet(plant, plant.systems[0], store).context == first.context
 
 
