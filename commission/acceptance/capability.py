@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from commission.acceptance.budget import Budget, Measured
@@ -17,12 +17,12 @@ from commission.acceptance.expectation import Deviation
 from commission.acceptance.guarantee import Terms, carry, terms_of
 from commission.acceptance.instruments import COUNTED, Reading
 from commission.acceptance.judgement import GuaranteeVerdict, coarse, verdict
-from commission.acceptance.routes import Refusal
+from commission.acceptance.routes import Refusal, RouteResult
 from commission.quantities import NOMENCLATURE, Explained, Kind
 
 if TYPE_CHECKING:
     from commission.description import LoadedPlant
-    from commission.prediction import SystemModel
+    from commission.prediction import Prediction, SystemModel
 
 NEVER_READ = ("carnot_cop", "refrigerant_flow", "net_cooling_capacity", "fan_power")
 """Expected values that nobody reads on site with ordinary instruments."""
@@ -35,7 +35,8 @@ class ReadingCapability:
 
     `budget` is that of reading minus expectation; a deviation larger than `detectable` (its expanded uncertainty, 95 %)
     is significant. `of_reading` is the standard uncertainty of the reading alone, `of_expectation` that of what it is
-    compared with: model, properties, and the condition that is read too.
+    compared with: model, properties, and the condition that is read too. `alone` is the expanded uncertainty of the
+    reading by itself.
     """
 
     key: str
@@ -45,6 +46,7 @@ class ReadingCapability:
     detectable: float
     of_reading: float
     of_expectation: float
+    alone: float
 
     @property
     def good_enough(self) -> bool:
@@ -53,6 +55,11 @@ class ReadingCapability:
         At equality a perfect instrument would make the smallest deviation seen smaller by 29 % (1 - 1/sqrt 2).
         """
         return self.of_reading <= self.of_expectation
+
+    @property
+    def partly_cancels(self) -> bool:
+        """Whether the reading alone is more uncertain than its deviation: what moves both alike falls out of it."""
+        return self.alone > self.detectable
 
 
 @dataclass(frozen=True, slots=True)
@@ -116,14 +123,32 @@ def capability(
     rows = tuple(_row(d, instruments.get(d.key)) for d in found.deviations)
     seen = {r.key for r in rows}
     not_read = {k: why for k, why in {**lacking, **unread}.items() if k not in seen}
-    guarantees = tuple(_guarantee(loaded, model, terms_of(g), found) for g in loaded.system(model.system_id).guarantee)
+    proved = _as_expected(found, prediction)
+    guarantees = tuple(_guarantee(loaded, model, terms_of(g), proved) for g in loaded.system(model.system_id).guarantee)
     warnings = (*found.warnings, *(g.coarse for g in guarantees if g.coarse))
     return Capability(found.conditions, rows, guarantees, found.refusals, not_read, warnings, prediction.filled)
 
 
 def _row(d: Deviation, instrument: str | None) -> ReadingCapability:
-    apart = d.reading.budget.standard, d.expected.budget.standard
+    apart = d.reading.budget.standard, d.expected.budget.standard, d.reading.budget.expanded()
     return ReadingCapability(d.key, d.expected.explained, instrument, d.budget, d.budget.expanded(), *apart)
+
+
+def _as_expected(found: Evaluation, prediction: Prediction) -> Evaluation:
+    """The evaluation of a plant that delivers what is expected, whatever little its routes read beside that.
+
+    A route takes shell loss and the warming of pipes as means, so that it gives some tenths of a percent more or less
+    than the model that made the readings; its uncertainty holds that.
+    """
+
+    def settled(result: RouteResult) -> RouteResult:
+        expected = prediction.expected.get(result.measured.key)
+        if expected is None:
+            return result
+        measured = replace(result.measured, value=expected.value)
+        return replace(result, derived=replace(result.derived, measured=measured))
+
+    return replace(found, routes=tuple(map(settled, found.routes)))
 
 
 def _readings(

@@ -11,7 +11,7 @@ from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
 from commission.manual.sheet_pages import sheet_context
-from commission.manual.showing import COVERAGE, SHEET_KEYS, How, show_how, size_text
+from commission.manual.showing import SHEET_KEYS, How, show_how, size_text
 from commission.manual.system_pages import conditions_words
 from commission.quantities import Display, Kind, limits_in_words
 
@@ -108,13 +108,14 @@ def _planned(how: How) -> How:
 
 def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
     kind = display.kind(r.key)
-    alone = size_text(display, kind, COVERAGE * r.of_reading)
+    alone = size_text(display, kind, r.alone)
+    less = "; what it shares with the expected value falls out of the deviation" if r.partly_cancels else ""
     return ProofRow(
         display.label(r.key),
         display.text(r.expected.value, kind),
         r.instrument or "from the readings above",
         size_text(display, kind, r.detectable),
-        "" if r.good_enough else f"coarser than the calculation, ± {alone} by itself",
+        "" if r.good_enough else f"coarser than the calculation, ± {alone} by itself{less}",
         _planned(show_how(r.expected, display, data.assumptions)),
     )
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+import math
 from pathlib import Path
 
 import pytest
@@ -168,3 +169,25 @@ def test_a_better_gauge_is_advised_only_where_it_shows_more(cold_room: LoadedPla
     assert found["fine"].good_enough
     assert not found["coarse"].good_enough
     assert found["coarse"].detectable > 1.5 * found["fine"].detectable
+
+
+def test_what_a_guarantee_reads_is_what_is_expected(chiller: LoadedPlant, chiller_model: SystemModel) -> None:
+    """One expected value: the reading by which a guarantee is worked through is that of the model at the forecast."""
+    forecast = {"heat_sink_inlet_temperature": 304.15}
+    expected = chiller_model.predict(forecast).expected
+    proved = [g for g in capability(chiller, chiller_model, forecast).guarantees if g.verdict.measured is not None]
+    assert proved
+    for g in proved:
+        assert g.verdict.measured is not None
+        assert g.verdict.measured.value == pytest.approx(expected[g.terms.quantity].value, rel=1e-12)
+
+
+def test_a_part_larger_than_the_whole_is_explained(cold_room: LoadedPlant, cold_room_model: SystemModel) -> None:
+    """A reading may be more uncertain than its deviation only by causes that reading and expectation share."""
+    rows = capability(cold_room, cold_room_model, {SINK: 295.15}).readings
+    for row in rows:
+        apart = math.hypot(row.of_reading, row.of_expectation)
+        assert row.partly_cancels is (row.alone > row.detectable)
+        assert not row.partly_cancels or row.budget.standard < apart
+    heat = next(r for r in rows if r.key == "heating_capacity")
+    assert heat.budget.standard < 0.99 * math.hypot(heat.of_reading, heat.of_expectation)
