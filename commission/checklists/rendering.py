@@ -41,21 +41,11 @@ class Target:
 
 
 def show(value: float, kind: Kind, display: Display) -> str:
-    """A value as a person reads it: vacuum in Pa and micron, long times in hours or days, small differences in bar."""
+    """A value as a person reads it, a vacuum in Pa and micron."""
     if kind is Kind.PRESSURE and value < VACUUM:
         return f"{value:.0f} Pa absolute ({round(value / MICRON, -1):.0f} micron)"
-    if kind is Kind.PRESSURE_DIFFERENCE:
-        return f"{display.spread(value, Kind.PRESSURE, 2)} {display.spread_unit(Kind.PRESSURE)}"
-    if kind is Kind.DURATION and value >= 2 * 86400:
-        return f"{value / 86400:.0f} days"
-    if kind is Kind.DURATION and value >= 2 * 3600:
-        return f"{value / 3600:.0f} h"
-    if kind is Kind.DURATION and value < 120:
-        return f"{value:.0f} s"
     if kind is Kind.NUMBER:
         return f"{value:g}"
-    if kind is Kind.DENSITY and value < 1 and display.system == "metric":
-        return f"{value * 1000:.3g} g/m³"
     return display.text(value, kind)
 
 
@@ -98,8 +88,6 @@ def _word(value: Value, display: Display) -> str:
     if isinstance(value.content, bool):
         return "yes" if value.content else "no"
     if isinstance(value.content, float) and isinstance(value.type, Kind):
-        if value.type is Kind.POWER and abs(value.content) < 1000.0:
-            return f"{value.content:.0f} W"
         return show(value.content, value.type, display)
     return str(value.content)
 
@@ -221,6 +209,7 @@ def _range_text(value: float | None, low: float | None, high: float | None, kind
     def shown(x: float) -> str:
         return show(x, kind, display)
 
+    display = display.fitting(kind, *(x for x in (value, low, high) if x is not None))
     if low is not None and high is not None:
         first, last = shown(low), shown(high)
         unit = last[len(last.split(" ")[0]) :]

@@ -232,7 +232,7 @@ def _unit(item: CheckedItem, facts: Facts) -> str | None:
     if entry.unit is not None:
         return pretty(_unit_as_shown(entry.unit, facts.display))
     assert entry.quantity is not None
-    return pretty(facts.display.unit_and_digits(facts.display.kind(entry.quantity))[0])
+    return pretty(facts.display.asking(entry.quantity).unit_and_digits(facts.display.kind(entry.quantity))[0])
 
 
 def _unit_as_shown(unit: str, display: Display) -> str:

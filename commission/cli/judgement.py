@@ -70,13 +70,14 @@ def _table(judgement: Judgement, display: Display) -> list[str]:
     rows = [("", "read", "expected", "deviation", "± (95 %)", "")]
     for d in judgement.deviations:
         kind = display.kind(d.key)
+        own = display.fitting(kind, d.expected.value)
         rows.append(
             (
                 display.label(d.key),
-                display.of(d.key, d.reading.value),
-                display.of(d.key, d.expected.value),
-                display.spread(d.deviation, kind),
-                f"{display.spread(d.budget.expanded(), kind)} {display.spread_unit(kind)}".strip(),
+                own.of(d.key, d.reading.value),
+                own.of(d.key, d.expected.value),
+                own.spread(d.deviation, kind),
+                f"{own.spread(d.budget.expanded(), kind)} {own.spread_unit(kind)}".strip(),
                 "significant" if d.significant else "",
             )
         )

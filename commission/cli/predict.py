@@ -179,10 +179,11 @@ def _as_text(title: str, result: Prediction | str, display: Display, *, given: b
     for key, explained in result.expected.items():
         quantity = display.quantities[key]
         u = explained.uncertainty
+        own = display.fitting(quantity.kind, explained.value)
         spread = (
             "not stated"
             if u is None
-            else f"{display.spread(COVERAGE * u, quantity.kind)} " + display.spread_unit(quantity.kind)
+            else f"{own.spread(COVERAGE * u, quantity.kind)} " + own.spread_unit(quantity.kind)
         )
         rows.append((quantity.label, display.of(key, explained.value), spread.strip()))
     widths = [max(len(row[i]) for row in rows) for i in range(3)]

@@ -89,7 +89,7 @@ def _row(
         value=display.text(used, a.kind, digits),
         moved=_moved(a, used, display),
         range="taken as exact" if known
-        else f"{display.number(a.low, a.kind, digits)} to {display.text(a.high, a.kind, digits)}",
+        else display.between(a.low, a.high, a.kind, digits),
         source=a.source,
         mark=a.mark,
         origin=a.origin,

@@ -108,6 +108,7 @@ def _planned(how: How) -> How:
 
 def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow:
     kind = display.kind(r.key)
+    display = display.fitting(kind, r.expected.value)
     alone = size_text(display, kind, r.alone)
     less = "; what it shares with the expected value falls out of the deviation" if r.partly_cancels else ""
     return ProofRow(
@@ -123,6 +124,8 @@ def _proof(r: ReadingCapability, data: SystemData, display: Display) -> ProofRow
 def _promise(g: GuaranteeCapability, display: Display) -> dict[str, Any]:
     kind = display.kind(g.terms.quantity)
     measured = g.verdict.measured
+    if measured is not None:
+        display = display.fitting(kind, measured.value)
     spread = g.verdict.budget.expanded() if g.verdict.budget else None
     return {
         "label": display.label(g.terms.quantity),

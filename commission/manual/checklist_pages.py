@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from commission.errors import CommissionError
 from commission.manual.book import Sheet
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.showing import How, kind_of, label_of, show_how, unit_of
+from commission.manual.showing import How, kind_of, label_of, show_how, value_text
 from commission.quantities import Display
 
 if TYPE_CHECKING:
@@ -61,7 +61,7 @@ def _item(item: Item, number: str, data: SystemData, display: Display) -> ItemVi
         figures=tuple(
             FigureView(
                 label_of(key, display),
-                f"{display.number(e.value, kind_of(e, display))} {unit_of(display, kind_of(e, display))}".strip(),
+                value_text(e.value, kind_of(e, display), display),
                 show_how(e, display, data.assumptions),
             )
             for key, e in figures.items()

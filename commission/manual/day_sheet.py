@@ -118,10 +118,10 @@ def _read_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint, ...]
     rows = [
         SheetRow(
             display.label(key),
-            unit_of(display, display.kind(key)),
+            unit_of(display.asking(key), display.kind(key)),
             "",
             instrument_words(plant, data, key, values.get(key)),
-            tuple(grid_cell(p, key, display) for p in points),
+            tuple(grid_cell(p, key, display.asking(key)) for p in points),
         )
         for key in readings
     ]
@@ -150,10 +150,10 @@ def _worked_out_rows(plant: PlantData, data: SystemData, points: tuple[GridPoint
     return tuple(
         SheetRow(
             display.label(key),
-            unit_of(display, display.kind(key)),
+            unit_of(display.asking(key), display.kind(key)),
             "; ".join(t for t in (how(key, fluid, predictions, display), _cut(key, predictions, display)) if t),
             "",
-            tuple(grid_cell(p, key, display) for p in points),
+            tuple(grid_cell(p, key, display.asking(key)) for p in points),
         )
         for key in worked_out(data, asked(plant, data)[1])
         if not points or any(key in p.expected for p in predictions)
@@ -181,8 +181,8 @@ def _condition_rows(plant: PlantData, data: SystemData) -> list[dict[str, str]]:
     return [
         {
             "label": display.label(k),
-            "unit": unit_of(display, display.kind(k)),
-            "rated": stated_number(display, rated[k], display.kind(k)) if k in rated else "",
+            "unit": unit_of(display.asking(k), display.kind(k)),
+            "rated": stated_number(display, rated[k], display.kind(k), column=True) if k in rated else "",
             "instrument": instrument_words(plant, data, k, rated.get(k)),
         }
         for k in asked(plant, data)[0]

@@ -10,7 +10,7 @@ from pydantic import BaseModel
 from pydantic.fields import FieldInfo
 
 from commission.description import LoadedPlant
-from commission.description.shapes import meaning_of
+from commission.description.shapes import inner, meaning_of
 from commission.manual.page_display import three_figures
 from commission.quantities import FLOWS, Display, Kind, Pressure, pretty
 
@@ -64,9 +64,6 @@ _LABELS = {
 }
 """Labels that are not simply the key in words."""
 
-_TWO_DAYS = 172800.0
-_PIPE = 0.5
-"""Below this length in m a person thinks in millimetres or inches: the size of a pipe, the gap of fins."""
 _ELSEWHERE = {"like", "without", "name", "rated_points", "guarantee", "documents", "assumptions", "measured_with",
               "design"}  # fmt: skip
 """Keys of a system that other parts of the manual show."""
@@ -84,23 +81,21 @@ def words_of(key: str, display: Display) -> str:
 
 
 def kind_of_field(info: FieldInfo) -> Kind | None:
-    """The kind of quantity that a field holds, or None."""
+    """The kind of quantity that a field holds, alone or by chosen names, or None."""
     own = next((m.kind for m in info.metadata if hasattr(m, "kind") and hasattr(m, "words")), None)
-    meaning = meaning_of(info.annotation)
+    held = inner(info.annotation)
+    meaning = meaning_of(held[1] if held else info.annotation)
     return own or (meaning.kind if meaning else None)
 
 
-def stated_number(display: Display, value: float, kind: Kind) -> str:
+def stated_number(display: Display, value: float, kind: Kind, column: bool = False) -> str:
     """A stated value with as many decimals as it takes not to change it by more than half a per cent.
 
+    In a `column` it keeps the unit in which the rest of the column is written.
     A flow that comes back from the calculation a hair off (2601 for a stated 2600) gets its three figures.
     """
-    if kind is Kind.DURATION and value >= _TWO_DAYS and value % 86400.0 == 0.0:
-        return f"{value / 86400.0:g} days"
-    if kind is Kind.LENGTH and 0.0 < abs(value) < _PIPE:
-        return f"{value / 0.0254:.3g} in" if display.system == "us_customary" else f"{1000.0 * value:.3g} mm"
-    if kind is Kind.DURATION and value >= 7200.0 and value % 3600.0 == 0.0:
-        return f"{value / 3600.0:g} h"
+    if not column:
+        display = display.fitting(kind, value)
     shown = display.convert(value, kind)
     unit, digits = display.unit_and_digits(kind)
     if kind is Kind.TEMPERATURE:

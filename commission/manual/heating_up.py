@@ -9,7 +9,7 @@ from commission.description import outdoor_sides
 from commission.errors import NotCalculatedError
 from commission.manual.facts import stated_number
 from commission.manual.gather import PlantData, SystemData
-from commission.manual.showing import COVERAGE, Row, show
+from commission.manual.showing import Row, show
 from commission.quantities import Display, Explained, Kind
 
 _AIR = "heat_source_inlet_temperature"
@@ -90,13 +90,5 @@ def display_key(air: float) -> str:
 
 
 def _row(explained: Explained, way: str, place: str, data: SystemData, display: Display) -> Row:
-    """A row; a long time in hours."""
     row = show(explained.quantity, explained, display, data.assumptions)
-    row = replace(row, key=f"{row.key}-{way.replace(' ', '-')}{place}", label=f"{row.label}, {way}")
-    if explained.quantity != "heat_up_time" or explained.value < _TWO_HOURS:
-        return row
-    hours, u = explained.value / 3600.0, explained.uncertainty
-    ends = [] if u is None else [hours + sign * COVERAGE * u / 3600.0 for sign in (-1, 1)]
-    # Display shows a plain number as it is: hours need no conversion of their own.
-    band = " to ".join(display.number(end, Kind.NUMBER, 1) for end in ends) or row.band
-    return replace(row, value=display.number(hours, Kind.NUMBER, 1), unit="h", band=band)
+    return replace(row, key=f"{row.key}-{way.replace(' ', '-')}{place}", label=f"{row.label}, {way}")

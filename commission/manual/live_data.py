@@ -93,8 +93,8 @@ def live_data(
         "digest": plant.loaded.digest[:12],
         "barometer": plant.loaded.barometric_pressure,
         "twoSided": TWO_SIDED,
-        "quantities": {k: {"label": shown.label(k), "kind": shown.kind(k).value} for k in dict.fromkeys(keys)},
-        "kinds": {k.value: kind_data(shown, k) for k in {shown.kind(k) for k in keys}},
+        "quantities": {k: _quantity(k, shown) for k in dict.fromkeys(keys)},
+        "kinds": _kinds(shown, keys),
         "conditions": list(plan.conditions),
         "readings": list(plan.readings),
         "underConditions": [k for k in plan.readings if k not in READING_KEYS],
@@ -128,6 +128,19 @@ def as_script(data: Mapping[str, Any]) -> Markup:
     for sign in "<>&\u2028\u2029":
         text = text.replace(sign, f"\\u{ord(sign):04x}")
     return Markup(text)
+
+
+def _quantity(key: str, display: Display) -> dict[str, str]:
+    quantity = display.quantities[key]
+    shown = {"shown": key} if quantity.asked_in else {}
+    return {"label": quantity.label, "kind": quantity.kind.value, **shown}
+
+
+def _kinds(display: Display, keys: Sequence[str]) -> dict[str, dict[str, Any]]:
+    """How each kind is typed and shown, and each quantity that is asked for in a unit of its own."""
+    found = {k.value: kind_data(display, k) for k in {display.kind(key) for key in keys}}
+    own = {key: kind_data(display.asking(key), display.kind(key)) for key in keys if display.quantities[key].asked_in}
+    return {**found, **own}
 
 
 def kind_data(display: Display, kind: Kind) -> dict[str, Any]:

@@ -95,11 +95,11 @@ def _row(plant: PlantData, data: SystemData, plan: LivePlan, key: str) -> Row:
     return Row(
         key,
         data.display.label(key),
-        unit_of(data.display, kind),
+        unit_of(data.display.asking(key), kind),
         HOW.get(key, ""),
         fit and key in (*plan.conditions, *plan.readings),
         plan.instruments.get(key) or "",
-        "" if rated is None else stated_number(data.display, rated, kind),
+        "" if rated is None else stated_number(data.display, rated, kind, column=True),
         key in plan.conditions and not key.endswith("_temperature"),
     )
 

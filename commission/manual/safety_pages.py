@@ -77,21 +77,19 @@ def _sentence(text: str) -> str:
 
 def figure_row(figure: Figure, data: SystemData, display: Display) -> Row:
     """A safety figure as a row; the source of the rule takes the place of the method's."""
+    from commission.safety import tonnes
+
     how = show_how(figure.explained, display, data.assumptions, kind=figure.kind)
     how = replace(how, source=figure.source, mark=figure.sureness)
-    unit = unit_of(display, figure.kind)
-    value = display.number(figure.value, figure.kind)
+    shown = display.fitting(figure.kind, figure.value)
+    unit = unit_of(shown, figure.kind)
+    value = shown.number(figure.value, figure.kind)
     if figure.kind is Kind.PRESSURE and figure.value < VACUUM:
         value, unit = f"{figure.value:.0f}", "Pa absolute"
     elif figure.key == "leak_check_months":
         value, unit = f"{figure.value:.0f}", "months"
     elif figure.key == "co2_equivalent":
-        value, unit = f"{figure.value / 1000:.2f}", "t"
-    elif figure.kind is Kind.DURATION and figure.value >= 7200.0:
-        value, unit = f"{figure.value / 3600:.0f}", "h"
-    elif figure.kind is Kind.PRESSURE_DIFFERENCE and abs(figure.value) >= 5000.0:
-        factor, unit = (1e5, "bar") if display.system == "metric" else (6894.757293168361, "psi")
-        value = f"{figure.value / factor:.2f}"
+        value, unit = tonnes(figure.value), "t"
     return Row(figure.key, _sentence(figure.title), figure.note, value, pretty(unit), "", how)
 
 

@@ -125,12 +125,17 @@ def band_text(display: Display, kind: Kind, band: tuple[float, float] | None) ->
     return f"{low} to {high}"
 
 
+_MOST_DIGITS = 4
+"""Behind the point, to show something of a small change."""
+
+
 def spread_text(display: Display, kind: Kind, value: float) -> str:
     """A signed change of a quantity of `kind`, such as `+0.4 K`."""
     digits = display.unit_and_digits(kind)[1]
     text = display.spread(value, kind, digits)
-    if float(text.replace("−", "-")) == 0:
-        text = display.spread(value, kind, digits + 1)
+    while digits < _MOST_DIGITS and value != 0 and float(text.replace("−", "-")) == 0:
+        digits += 1
+        text = display.spread(value, kind, digits)
     sign = "" if text.startswith("−") else "+"
     return f"{sign}{text} {display.spread_unit(kind)}".rstrip()
 
@@ -138,32 +143,30 @@ def spread_text(display: Display, kind: Kind, value: float) -> str:
 def size_text(display: Display, kind: Kind, value: float) -> str:
     """The size of an uncertainty with its unit, with as many digits as it takes to show something."""
     digits = display.unit_and_digits(kind)[1]
-    while digits < 4 and value > 0 and float(display.spread(value, kind, digits)) == 0:
+    while digits < _MOST_DIGITS and value > 0 and float(display.spread(value, kind, digits)) == 0:
         digits += 1
     return f"{display.spread(value, kind, digits)} {display.spread_unit(kind)}".strip()
 
 
 VACUUM = 5000.0
 """Pa absolute below which a pressure is a vacuum: nobody reads it on a gauge."""
-_CUBIC_METRE = 1.0  # from here on a volume is that of a room, not of a vessel
+_SMALL_NUMBER = 0.1
 
 
-def _input_text(item: Input, display: Display) -> str:
-    """An input as its reader would say it: a vacuum absolute, a room in cubic metres."""
-    if item.kind is Kind.PRESSURE and item.value < VACUUM:
-        return f"{item.value:.0f} Pa absolute"
-    if item.kind is Kind.VOLUME and item.value >= _CUBIC_METRE and display.system == "metric":
-        return f"{item.value:.1f} m³"
-    kind = display.kind(item.name) if item.name in display.quantities else item.kind
-    return display.text(item.value, kind, 4 if item.kind is Kind.NUMBER and abs(item.value) < 1 else None)
+def value_text(value: float, kind: Kind, display: Display) -> str:
+    """A value as its reader would say it: a vacuum absolute, a small plain number with its figures."""
+    if kind is Kind.PRESSURE and value < VACUUM:
+        return f"{value:.0f} Pa absolute"
+    return display.text(value, kind, 4 if kind is Kind.NUMBER and 0.0 < abs(value) < _SMALL_NUMBER else None)
 
 
 def show_input(item: Input, display: Display) -> ShownInput:
     """One input with its unit and origin."""
     match = _ASSUMPTION.match(item.origin)
+    kind = display.kind(item.name) if item.name in display.quantities else item.kind
     return ShownInput(
         name=label_of(item.name, display),
-        value=_input_text(item, display),
+        value=value_text(item.value, kind, display),
         origin=item.origin,
         assumption=match.group(1) if match else None,
     )
@@ -183,6 +186,7 @@ def show_how(
     """
     method = methods()[explained.method]
     kind = kind or kind_of(explained, display)
+    own = display.fitting(kind, explained.value)
     ordered = sorted((parts or {}).items(), key=lambda item: -abs(item[1]))
     return How(
         method=method.key,
@@ -195,11 +199,11 @@ def show_how(
             (key, assumptions[key].title if key in assumptions else key) for key in explained.assumptions
         ),
         parts=tuple(
-            (assumptions[cause].title if cause in assumptions else cause, spread_text(display, kind, size))
+            (assumptions[cause].title if cause in assumptions else cause, spread_text(own, kind, size))
             for cause, size in ordered
             if size != 0 and abs(size) >= 0.05 * abs(ordered[0][1])
         ),
-        standard=None if explained.uncertainty is None else spread_text(display, kind, explained.uncertainty)[1:],
+        standard=None if explained.uncertainty is None else spread_text(own, kind, explained.uncertainty)[1:],
     )
 
 
@@ -212,14 +216,15 @@ def show(
 ) -> Row:
     """The row of an explained number."""
     kind = kind_of(explained, display)
+    own = display.fitting(kind, explained.value)
     meant = display.quantities[key].definition if key in display.quantities else ""
     return Row(
         key=key,
         label=label_of(key, display),
         definition="; ".join(t for t in (meant, cut_off(explained, display)) if t),
-        value=display.number(explained.value, kind),
-        unit=unit_of(display, kind),
-        band=band_text(display, kind, explained.band(COVERAGE)),
+        value=own.number(explained.value, kind),
+        unit=unit_of(own, kind),
+        band=band_text(own, kind, explained.band(COVERAGE)),
         how=show_how(explained, display, assumptions, parts),
     )
 

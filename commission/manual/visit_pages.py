@@ -42,6 +42,7 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
 
 def _deviation(display: Display, key: str, d: FrozenDeviation, written: str) -> dict[str, Any]:
     kind = display.kind(key)
+    display = display.fitting(kind, d.expected)
     return {
         "label": display.label(key),
         "unit": unit_of(display, kind),
@@ -63,6 +64,7 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
     from commission.acceptance.decision import sure_text
 
     kind = display.kind(g.quantity)
+    display = display.fitting(kind, g.guaranteed)
     shares = [
         f"{display.text(v, Kind.RATIO, 1)} {word}"
         for v, word in ((g.below, "below"), (g.above, "above"))

@@ -3,14 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, field
-from typing import Literal
+from dataclasses import dataclass, field, replace
+from typing import Self
 
 from commission.quantities.kinds import FLOWS, Kind
 from commission.quantities.nomenclature import NOMENCLATURE, Quantity
+from commission.quantities.sizes import UnitSystem, by_size
 from commission.quantities.units import Reference, Unit, find_unit
-
-UnitSystem = Literal["metric", "us_customary"]
 
 _SHOWN: dict[Kind, tuple[tuple[str, int], tuple[str, int]]] = {
     Kind.TEMPERATURE: (("°C", 1), ("°F", 1)),
@@ -64,17 +63,42 @@ class Display:
 
     `barometric_pressure` in Pa turns absolute pressures into the gauge pressures that instruments show. `quantities` is
     the nomenclature of the system in question, which calls its media by their names; that of any system where none is.
+    `chosen` are the kinds shown in another unit than the usual one, with its digits (see `fitting`).
     """
 
     system: UnitSystem
     barometric_pressure: float
     quantities: Mapping[str, Quantity] = field(default_factory=lambda: NOMENCLATURE, repr=False)
+    chosen: tuple[tuple[Kind, str, int], ...] = ()
+
+    def fitting(self, kind: Kind, *values: float) -> Self:
+        """The same display with the unit of `kind` in which the largest of `values` (SI) is best read.
+
+        A number alone, as in the column of a table, keeps the usual unit; a value that stands with its unit, or a row
+        of its own, takes the one that fits its size: 110 W and not 0.11 kW.
+        """
+        found = by_size(kind, max(map(abs, values)), self.system) if values and self._own(kind) is None else None
+        return self if found is None else replace(self, chosen=(*self.chosen, (kind, *found)))
+
+    def asking(self, key: str) -> Self:
+        """The same display with the unit in which a quantity of the nomenclature is asked for and written down."""
+        quantity = self.quantities[key]
+        if quantity.asked_in is None or self._own(quantity.kind) is not None:
+            return self
+        return replace(self, chosen=(*self.chosen, (quantity.kind, *quantity.asked_in)))
+
+    def _own(self, kind: Kind) -> tuple[str, int] | None:
+        return next(((unit, digits) for one, unit, digits in self.chosen if one is kind), None)
 
     def unit_and_digits(self, kind: Kind) -> tuple[str, int]:
         """The unit shown for `kind` and the digits behind the point."""
         if kind is Kind.NUMBER:
             return "", 2
-        return _SHOWN[kind][0 if self.system == "metric" else 1]
+        return self._own(kind) or _SHOWN[kind][0 if self.system == "metric" else 1]
+
+    def _places(self, kind: Kind, shown: float) -> int:
+        """Digits behind the point of a shown number: those of the unit chosen, or those usual for the kind."""
+        return self.unit_and_digits(kind)[1] if self._own(kind) else _places(self.unit_and_digits(kind)[1], kind, shown)
 
     def convert(self, value: float, kind: Kind) -> float:
         """An SI value in the unit shown; an absolute pressure becomes gauge where the unit is gauge."""
@@ -88,21 +112,27 @@ class Display:
     def number(self, value: float, kind: Kind, digits: int | None = None) -> str:
         """The number alone, in the unit shown, with a true minus sign and no negative zero."""
         shown = self.convert(value, kind)
-        places = _places(self.unit_and_digits(kind)[1], kind, shown) if digits is None else digits
+        places = self._places(kind, shown) if digits is None else digits
         text = f"{shown:.{places}f}"
         if float(text) == 0:
             text = text.lstrip("-")
         return text.replace("-", "−")
 
     def text(self, value: float, kind: Kind, digits: int | None = None) -> str:
-        """Number and unit, such as `−8.0 °C` or `2.31 bar g`."""
-        unit = pretty(self.unit_and_digits(kind)[0])
-        return f"{self.number(value, kind, digits)} {unit}".rstrip()
+        """Number and unit, such as `−8.0 °C` or `2.31 bar g`; without `digits` in the unit that fits its size."""
+        shown = self.fitting(kind, value) if digits is None else self
+        return f"{shown.number(value, kind, digits)} {pretty(shown.unit_and_digits(kind)[0])}".rstrip()
+
+    def between(self, low: float, high: float, kind: Kind, digits: int | None = None) -> str:
+        """Two ends and their unit, such as `0.8 to 4.0 %`."""
+        shown = self.fitting(kind, low, high) if digits is None else self
+        first, last = (shown.number(end, kind, digits) for end in (low, high))
+        return f"{first} to {last} {pretty(shown.unit_and_digits(kind)[0])}".rstrip()
 
     def spread(self, value: float, kind: Kind, digits: int | None = None) -> str:
         """The size of an uncertainty or deviation of this kind, number alone: an offset never applies."""
         factor = 1.0 if kind is Kind.NUMBER else _unit(self.unit_and_digits(kind)[0], kind).factor
-        places = _places(self.unit_and_digits(kind)[1], kind, 10 * value / factor) if digits is None else digits
+        places = self._places(kind, 10 * value / factor) if digits is None else digits
         text = f"{value / factor:.{places}f}"
         if float(text) == 0:
             text = text.lstrip("-")

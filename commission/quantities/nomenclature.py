@@ -15,13 +15,17 @@ from commission.quantities.kinds import Kind
 
 @dataclass(frozen=True, slots=True)
 class Quantity:
-    """A quantity of the trade. `definition` says exactly what is meant, so that two people read the same thing."""
+    """A quantity of the trade. `definition` says exactly what is meant, so that two people read the same thing.
+
+    `asked_in` is the unit in which it is written down, with its digits, where that is not the usual one of its kind.
+    """
 
     key: str
     symbol: str
     label: str
     kind: Kind
     definition: str
+    asked_in: tuple[str, int] | None = None
 
     @property
     def words(self) -> str:
@@ -152,7 +156,7 @@ def _all(source: MediumName, sink: MediumName) -> tuple[Quantity, ...]:
         Quantity("circulation_return_temperature", "T_cr", "Circulation return temperature", T,
                  "temperature of the water that comes back from the circulation loop"),
         Quantity("heat_up_time", "t_h", "Heat-up time", Kind.DURATION,
-                 "time from the stated start temperature to the stop of the machine at the set point"),
+                 "time from the stated start temperature to the stop of the machine at the set point", ("h", 1)),
         Quantity("heat_up_energy", "E_h", "Heat-up energy", Kind.ENERGY,
                  "electric energy drawn during the heat-up time"),
         Quantity("defrost_time", "t_d", "Defrost time", Kind.DURATION, "time from start to end of one defrost"),

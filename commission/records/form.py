@@ -104,7 +104,7 @@ def _lines(
 ) -> Iterator[str]:
     for key, instrument in asked:
         quantity = display.quantities[key]
-        unit = pretty(display.unit_and_digits(quantity.kind)[0])
+        unit = pretty(display.asking(key).unit_and_digits(quantity.kind)[0])
         named = f", instrument: {instrument}" if instrument else ""
         value, how = "value: ", ""
         if three and key in _BY_PHASE:

@@ -95,6 +95,7 @@ def guarantee_sentence(verdict: GuaranteeVerdict, display: Display) -> str:
     kind = display.kind(key)
     said = f"{display.label(key)}: {verdict.outcome}"
     if verdict.measured is not None:
+        display = display.fitting(kind, verdict.measured.value)
         said += f", {display.text(verdict.measured.value, kind)}"
         if verdict.budget is not None:
             said += f" ± {display.spread(verdict.budget.expanded(), kind)} {display.spread_unit(kind)}".rstrip()

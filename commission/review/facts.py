@@ -140,7 +140,8 @@ def explained_figure(plant: PlantFacts, explained: Explained, label: str | None 
     figure = plant.quantity(explained.quantity, explained.value, label)
     if explained.uncertainty:
         kind = plant.display.kind(explained.quantity)
-        spread = f"{plant.display.spread(explained.uncertainty, kind)} {plant.display.spread_unit(kind)}".rstrip()
+        shown = plant.display.fitting(kind, explained.value)
+        spread = f"{shown.spread(explained.uncertainty, kind)} {shown.spread_unit(kind)}".rstrip()
         figure = replace(figure, text=f"{figure.text} (standard uncertainty {spread})")
     return replace(figure, explained=explained)
 

@@ -6,7 +6,7 @@ from commission.safety.facts import MARKS, Fact, fact, facts
 from commission.safety.figure import QUANTITY_TITLES, Figure, Figures
 from commission.safety.figure import TITLES as FIGURE_TITLES
 from commission.safety.figures import safety_figures
-from commission.safety.formulas import nitrogen_pressure
+from commission.safety.formulas import nitrogen_pressure, tonnes
 from commission.safety.hot_water import warm_volume_below_element
 from commission.safety.leaks import LeakDuty, label_text, leak_duty, leak_duty_of
 from commission.safety.limit_order import (
@@ -71,5 +71,6 @@ __all__ = [
     "safety_figures",
     "strength_test_steps",
     "substance_of",
+    "tonnes",
     "warm_volume_below_element",
 ]

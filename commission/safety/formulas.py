@@ -86,6 +86,12 @@ def emergency_ventilation_ashrae15(charge: float) -> float:
     return 0.070 * math.sqrt(charge)
 
 
+def tonnes(kilograms: float) -> str:
+    """A mass in tonnes as a number for people, with two figures where it is small: 0.0019, 1.24."""
+    tonne = kilograms / 1000.0
+    return f"{tonne:.2g}" if 0.0 < tonne < 0.1 else f"{tonne:.2f}"
+
+
 def co2_equivalent(charge: float, gwp: float) -> float:
     """CO₂ equivalent of a charge in kg."""
     return charge * gwp

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from commission.quantities import Explained, Input, Kind
 from commission.safety.facts import load, read_value, weaker
-from commission.safety.formulas import co2_equivalent
+from commission.safety.formulas import co2_equivalent, tonnes
 from commission.safety.register import fluid_of, substance_of
 
 if TYPE_CHECKING:
@@ -150,7 +150,7 @@ def _count(group: Mapping[str, Any], name: str, substance: Substance, charge: fl
         factor = Input("GWP by EU 2024/573", gwp.value, Kind.NUMBER, f"register: {gwp.source} ({gwp.mark})")
         inputs = (*_charge(charge), factor)
         measure = Explained("co2_equivalent", co2_equivalent(charge, gwp.value), None, "co2_equivalent", inputs)
-        said = f"CO₂ equivalent {measure.value / 1000:.3g} t"
+        said = f"CO₂ equivalent {tonnes(measure.value)} t"
     start, exempt = group["from"], group["sealed_exempt_below"]
     if measure.value < read_value(str(start["value"]), Kind.MASS):
         return _Count(measure, f"{said}, below {_amount(start, name)}", None, None, str(start["mark"]))
@@ -212,8 +212,8 @@ def label_text(law: str, substance: Substance, charge: float | None, sealed: boo
     if law == EU and substance.listed:
         lines.insert(0, "Contains fluorinated greenhouse gases")
         if substance.gwp is not None:
-            tonnes = "____" if charge is None else f"{co2_equivalent(charge, substance.gwp.value) / 1000:.2f}"
-            lines.append(f"GWP {substance.gwp.value:.0f}, CO₂ equivalent {tonnes} t")
+            equivalent = "____" if charge is None else tonnes(co2_equivalent(charge, substance.gwp.value))
+            lines.append(f"GWP {substance.gwp.value:.0f}, CO₂ equivalent {equivalent} t")
     if sealed:
         lines.append("Hermetically sealed")
     if substance.flammable:

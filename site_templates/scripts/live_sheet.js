@@ -33,7 +33,7 @@
     var words = label(key);
     return /^.[A-Z]/.test(words) ? words : words.charAt(0).toLowerCase() + words.slice(1);
   }
-  function kind(key) { return data.kinds[data.quantities[key].kind]; }
+  function kind(key) { var one = data.quantities[key]; return data.kinds[one.shown || one.kind]; }
 
   // A number as typed: decimal comma or point, any minus sign. null: nothing there; NaN: no number.
   function number(words) {

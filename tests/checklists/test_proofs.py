@@ -60,7 +60,7 @@ def test_the_live_trip_names_what_may_act_first(example_folder: Path) -> None:
     """The discharge limiter or the flow switch may stop the machine before the high-pressure device does."""
     item = "live-trips.high-pressure"
     assert "discharge limiter at 115" in (listed(example_folder, "dining-hall")[item].how or "")
-    assert "flow switch at 0.060" in (listed(example_folder, "shower-water")[item].how or "")
+    assert "flow switch at 60 L/h" in (listed(example_folder, "shower-water")[item].how or "")
     assert "act first" not in (listed(example_folder, "cold-room")[item].how or "")
 
 

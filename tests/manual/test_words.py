@@ -9,12 +9,12 @@ from typing import Any
 
 import pytest
 
-from commission.description import Assumption
+from commission.description import Assumption, load_plant
 from commission.manual import search
 from commission.manual.archive import OpenLine
 from commission.manual.assumed import shown_assumptions
 from commission.manual.book import Book, Sheet, slug, slugs
-from commission.manual.facts import stated_number
+from commission.manual.facts import stated_number, system_facts
 from commission.manual.figures import Chart, Line, by_night, draw_chart
 from commission.manual.figures.style import FIRST, INK
 from commission.manual.page_display import PageDisplay
@@ -69,6 +69,25 @@ def test_a_moved_assumption_is_shown_as_it_is_used_with_the_listed_value_beside_
     assert shown.moved == "the list says 2.0 %: moved within its range to meet the rated points best"
     data.model.fit.values["leak"] = 0.0201
     assert shown_assumptions(data, METRIC)[0].moved == ""
+
+
+def test_named_values_are_shown_as_values(example_folder: Path) -> None:
+    """The flow of each fan stage stands with its unit, as a flow that stands alone does."""
+    groups = system_facts(load_plant(example_folder), "dining-hall", PageDisplay("metric", 97655.0))
+    stages = {f.label: f.text for g in groups for f in g.facts if "stage" in f.label.lower()}
+    assert len(stages) == 3
+    assert {text.split(" ")[1] for text in stages.values()} == {"m³/h"}
+    assert min(float(text.split(" ")[0]) for text in stages.values()) > 500
+
+
+def test_a_row_takes_the_unit_that_fits_and_a_heat_up_is_asked_for_in_hours() -> None:
+    """A fan is shown in W with its band, seven hours as such, and written down in the same unit."""
+    fan = show("fan_power", Explained("fan_power", 130.0, 5.0, "fan_power"), METRIC, {})
+    assert (fan.value, fan.unit, fan.band) == ("130", "W", "120 to 140")
+    time = show("heat_up_time", Explained("heat_up_time", 25632.0, 600.0, "fan_power"), METRIC, {})
+    assert (time.value, time.unit, time.band) == ("7.1", "h", "6.8 to 7.5")
+    assert METRIC.asking("heat_up_time").unit_and_digits(Kind.DURATION) == ("h", 1)
+    assert METRIC.asking("defrost_time").unit_and_digits(Kind.DURATION)[0] == "min"
 
 
 def test_spread_has_a_sign_and_never_shows_nothing_for_something() -> None:

@@ -100,7 +100,7 @@ def test_every_quantity_of_the_nomenclature_says_what_it_means() -> None:
 def test_a_small_volume_flow_keeps_its_figures() -> None:
     """Water at 127 L/h is not shown as 0 m³/h, nor its uncertainty; air by the thousand keeps whole numbers."""
     display = Display("metric", 101325.0)
-    assert display.text(127e-3 / 3600, Kind.VOLUME_FLOW) == "0.127 m³/h"
+    assert display.number(127e-3 / 3600, Kind.VOLUME_FLOW) == "0.127"
     assert display.spread(3e-3 / 3600, Kind.VOLUME_FLOW) == "0.003"
     assert display.text(4200 / 3600, Kind.VOLUME_FLOW) == "4200 m³/h"
     assert display.spread(40 / 3600, Kind.VOLUME_FLOW) == "40"
@@ -131,3 +131,55 @@ def test_a_liquid_flows_in_gallons_where_air_flows_in_cubic_feet() -> None:
     assert display.of("heat_sink_flow", flow) == "3.24 cfm"
     assert Display("metric", BAROMETER, named).of("heat_source_flow", flow) == "5.50 m³/h"
     assert parse("24.2 gpm", Kind.LIQUID_FLOW) == flow
+
+
+@pytest.mark.parametrize(
+    ("kind", "value", "text"),
+    [
+        (Kind.POWER, 110.0, "110 W"),
+        (Kind.HEAT_FLOW, 380.0, "380 W"),
+        (Kind.POWER, 500.0, "0.50 kW"),
+        (Kind.POWER, 0.0, "0.00 kW"),
+        (Kind.PRESSURE_DIFFERENCE, 40.0, "40 Pa"),
+        (Kind.PRESSURE_DIFFERENCE, 3.4e3, "0.034 bar"),
+        (Kind.PRESSURE_DIFFERENCE, -2.5e5, "−2.50 bar"),
+        (Kind.VOLUME_FLOW, 60e-3 / 3600, "60 L/h"),
+        (Kind.VOLUME_FLOW, 1.55 / 3600, "1.55 m³/h"),
+        (Kind.MASS, 0.053, "53 g"),
+        (Kind.MASS, 0.45, "0.45 kg"),
+        (Kind.DENSITY, 0.0095, "9.5 g/m³"),
+        (Kind.DENSITY, 1.2, "1.200 kg/m³"),
+        (Kind.VOLUME, 67.2, "67.2 m³"),
+        (Kind.DURATION, 45.0, "45 s"),
+        (Kind.DURATION, 180.0, "3 min"),
+        (Kind.DURATION, 150.0, "2.5 min"),
+        (Kind.DURATION, 86400.0, "24 h"),
+        (Kind.DURATION, 427 * 60.0, "7.1 h"),
+        (Kind.DURATION, 14 * 86400.0, "14 days"),
+        (Kind.LENGTH, 0.028, "28 mm"),
+        (Kind.RATIO, 0.006, "0.6 %"),
+        (Kind.RATIO, 0.05, "5 %"),
+    ],
+)
+def test_a_value_that_stands_with_its_unit_takes_the_one_that_fits_its_size(
+    kind: Kind, value: float, text: str
+) -> None:
+    """What people on site say of small and long things; nothing at all keeps the usual unit."""
+    assert Display("metric", BAROMETER).text(value, kind) == text
+
+
+def test_what_stands_together_is_shown_in_one_unit() -> None:
+    """Both ends of a range, and a value with its spread, take the unit of the larger; a column keeps the usual one."""
+    display = Display("metric", BAROMETER)
+    assert display.between(60.0, 420.0, Kind.POWER) == "60 to 420 W"
+    assert display.between(420.0, 700.0, Kind.POWER) == "0.42 to 0.70 kW"
+    assert display.between(-700.0, 60.0, Kind.POWER) == "−0.70 to 0.06 kW"
+    own = display.fitting(Kind.POWER, 110.0)
+    assert (own.number(130.0, Kind.POWER), own.spread(4.0, Kind.POWER), own.spread_unit(Kind.POWER)) == (
+        "130",
+        "4",
+        "W",
+    )
+    assert own.text(2300.0, Kind.POWER) == "2300 W"
+    assert display.number(110.0, Kind.POWER) == "0.11"
+    assert Display("us_customary", BAROMETER).text(40.0, Kind.PRESSURE_DIFFERENCE) == "0.16 in w.g."

@@ -42,7 +42,7 @@ def most_worth_knowing(facts: SystemFacts) -> Iterator[Remark]:
     kind = assumption.kind
     show = facts.plant.display
     title = f"{assumption.title[:1].lower()}{assumption.title[1:]}"
-    ends = f"{show.number(assumption.low, kind)} to {show.text(assumption.high, kind)}"
+    ends = show.between(assumption.low, assumption.high, kind)
     used = value_used(facts.model, assumption)
     listed = show.text(assumption.value, kind)
     moved = f"moved by the rated points from {listed}; " if show.text(used, kind) != listed else ""
