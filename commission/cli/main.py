@@ -71,6 +71,8 @@ def main(arguments: Sequence[str] | None = None) -> None:
     # Process-wide switches belong here and not in the library: CoolProp starts ten times sooner without its tables
     # of saturation approximations, which this package replaces by its own saturation lines.
     os.environ.setdefault("COOLPROP_DISABLE_SUPERANCILLARIES_ENTIRELY", "1")
+    # The arrays here are small: threads of the linear algebra would only wait for each other.
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     try:
         _run(arguments)
     except BrokenPipeError:

@@ -195,13 +195,28 @@ class TwoPhase:
 
     def series(self, p: float) -> Array:
         """Chebyshev coefficients in 2x - 1 of the four tables at pressure `p` (Pa): shape (4, terms in x)."""
+        return np.asarray(self._terms(p).dot(self._flat).reshape(self.tables.shape[1:]))
+
+    def temperature_series(self, p: float) -> list[float]:
+        """The first row of `series`."""
+        series: list[float] = self._terms(p).dot(self._temperatures).tolist()
+        return series
+
+    def _terms(self, p: float) -> Array:
         w = (2.0 * math.sqrt(math.log(self.p_critical / p)) - self.high - self.low) / (self.high - self.low)
-        terms = np.cos(np.arange(len(self.tables)) * math.acos(min(1.0, max(-1.0, w))))
-        return np.asarray(terms.dot(self._flat).reshape(self.tables.shape[1:]))
+        return np.cos(self._orders * math.acos(min(1.0, max(-1.0, w))))
+
+    @cached_property
+    def _orders(self) -> Array:
+        return np.arange(len(self.tables), dtype=np.float64)
 
     @cached_property
     def _flat(self) -> Array:
         return self.tables.reshape(len(self.tables), -1)
+
+    @cached_property
+    def _temperatures(self) -> Array:
+        return np.ascontiguousarray(self.tables[:, 0])
 
 
 @dataclass(frozen=True)

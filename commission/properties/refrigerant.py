@@ -42,10 +42,12 @@ class Refrigerant(Saturation):
 
     def __init__(self, data: FluidData) -> None:
         from commission.properties.equation import Equation
+        from commission.properties.two_phase import WetIsobar
 
         super().__init__(data)
         self.property_source = data.property_source
         self._equation: Equation = Equation(data)
+        self._isobar = WetIsobar  # imported late, and not anew for each state
 
     @cached_property
     def _beyond(self) -> Beyond:
@@ -288,12 +290,10 @@ class Refrigerant(Saturation):
         return isobar.mean_temperature(max(x, 0.0))
 
     def _wet(self, p: float) -> WetIsobar:
-        from commission.properties.two_phase import WetIsobar
-
         self._need_pressure(p, self.p_bubble_low, self.p_dew_high)
         T_dew = self._dew.temperature(p)
         T_bubble = self._bubble.temperature(p) if self.is_blend else T_dew
-        return WetIsobar(
+        return self._isobar(
             _at_pressure(self._bubble, T_bubble, p), _at_pressure(self._dew, T_dew, p), self._data.two_phase
         )
 

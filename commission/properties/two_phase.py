@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
@@ -28,8 +28,7 @@ def _mean_of_series(series: Sequence[float], start: float) -> float:
     return mean
 
 
-@dataclass(frozen=True)
-class WetIsobar:
+class WetIsobar(NamedTuple):
     """The wet states at one pressure, between its bubble and dew point."""
 
     bubble: SaturationState
@@ -77,7 +76,7 @@ class WetIsobar:
         a, b = self.bubble, self.dew
         if self.table is None:
             return b.T
-        deviation = _mean_of_series(self.table.series(b.p)[0].tolist(), 2 * x_in - 1)
+        deviation = _mean_of_series(self.table.temperature_series(b.p), 2 * x_in - 1)
         return a.T + 0.5 * (1 + x_in) * (b.T - a.T) + deviation
 
     @staticmethod
