@@ -153,6 +153,8 @@ def _potential(T: float, p: float, fusion: float) -> float:
 def coil_conductance(heat: float, refrigerant: float, stream: Stream, air_share: float) -> float:
     """Dry conductance in W/K of the coil that takes `heat` (W): the inverse of `coil_heat`.
 
+    A coil never takes less than when it is dry, so that the conductance of a dry one is the most that is needed.
+
     Raises:
         NotCalculatedError: more heat than the air can give at that difference, whatever the conductance.
     """
@@ -162,8 +164,17 @@ def coil_conductance(heat: float, refrigerant: float, stream: Stream, air_share:
             f"{heat / 1e3:.2f} kW cannot be transferred at {stream.temperature - refrigerant:.1f} K inlet difference: "
             f"the air flow would carry {greatest / 1e3:.2f} kW at most"
         )
-    low, high = math.log(1e-4 * stream.capacity_rate), math.log(1e4 * stream.capacity_rate)
-    return math.exp(_root(lambda x: coil_heat(stream, refrigerant, math.exp(x), air_share) - heat, low, high))
+    dry = heat / (stream.capacity_rate * (stream.temperature - refrigerant))
+    most = -math.log1p(-dry) if dry < 1 - 1e-9 else 1e4
+
+    def gap(x: float) -> float:
+        return coil_heat(stream, refrigerant, math.exp(x), air_share) - heat
+
+    high = math.log(most * stream.capacity_rate) + 1e-9  # rounding of a dry coil only
+    low = high - 1.0
+    while gap(low) > 0:
+        low -= 1.0
+    return math.exp(_root(gap, low, high))
 
 
 def _root(f: Callable[[float], float], low: float, high: float) -> float:
