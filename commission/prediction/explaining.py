@@ -6,7 +6,7 @@ import math
 from collections.abc import Mapping
 
 from commission.machine import OperatingPoint
-from commission.prediction.expected import Found
+from commission.prediction.expected import TOO_NEAR, Found
 from commission.prediction.facts import Facts
 from commission.prediction.fitting import Fit
 from commission.quantities import NOMENCLATURE, Explained, Input, Kind, bounds
@@ -264,3 +264,22 @@ def _stated(facts: Facts, fit: Fit, point: OperatingPoint) -> dict[str, list[Inp
         ),
     )
     return table
+
+
+VAGUE = 0.2
+"""Standard uncertainty over value from which a Carnot COP is not told."""
+
+
+def drop_vague_carnot(nominal: Found, parts: Mapping[str, Mapping[str, float]]) -> None:
+    """Takes a Carnot COP out that is known no better than to a fifth: the media lie near each other."""
+    value = nominal.values.get("carnot_cop")
+    if value is not None and math.hypot(*parts["carnot_cop"].values()) > VAGUE * value:
+        del nominal.values["carnot_cop"]
+        nominal.reasons["carnot_cop"] = TOO_NEAR
+
+
+def add_part(parts: dict[str, float], cause: str, amount: float) -> None:
+    """Add a contribution; several independent ones of one cause (the scatter moves the fit in several directions) are
+    put together as their root sum of squares, with the sign of the first."""
+    first = parts.get(cause)
+    parts[cause] = amount if first is None else math.copysign(math.hypot(first, amount), first)

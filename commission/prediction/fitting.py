@@ -22,10 +22,10 @@ from commission.prediction.building import build
 from commission.prediction.facts import Facts, Used
 from commission.prediction.plan import Levels, Plan
 from commission.prediction.problem import Problem, prepare, restricted
-from commission.prediction.rated import MARGIN, Case, Datum, rated_of
+from commission.prediction.rated import MARGIN, Case, Datum, rated_of, reference
 from commission.prediction.simulating import Seen, observed
 from commission.prediction.table import Array, Table, gaps_of, move, scatter_directions
-from commission.quantities import Kind
+from commission.quantities import Input, Kind
 
 SCATTER = "scatter of rated points"
 WIDE_SCATTER = 0.05
@@ -294,3 +294,26 @@ def doubts(found: Fit) -> tuple[str, ...]:
 
 def _lower(title: str) -> str:
     return title[:1].lower() + title[1:]
+
+
+def inputs_found(facts: Facts, found: Fit) -> dict[str, Input]:
+    """What the fit found, for review: efficiencies at the rated points, levels, conductances."""
+    machine = found.plan.machine
+    point = found.points[reference(found.cases)]
+    balance = point.balance
+    assert balance is not None
+    values: list[tuple[str, float, Kind]] = [
+        ("isentropic efficiency at the rated point", point.compression.isentropic_efficiency, Kind.RATIO),
+        ("swept flow times volumetric level", found.levels.swept_flow, Kind.VOLUME_FLOW),
+        ("conductance of the condenser", machine.condenser.conductance, Kind.CONDUCTANCE),
+        ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
+        ("evaporating temperature at the rated point", balance.evaporating_temperature, Kind.TEMPERATURE),
+    ]
+    if balance.condensing_temperature is not None:
+        values.append(("condensing temperature at the rated point", balance.condensing_temperature, Kind.TEMPERATURE))
+    volumetric = point.compression.volumetric_efficiency
+    if facts.system.compressor.displacement is not None and volumetric is not None:
+        values.insert(0, ("volumetric efficiency at the rated point", volumetric, Kind.RATIO))
+    if found.dof:
+        values.append(("scatter of rated points about the fit", found.scatter, Kind.RATIO))
+    return {name: Input(name, value, kind, "fitted") for name, value, kind in values}

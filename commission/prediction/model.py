@@ -10,10 +10,10 @@ from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.conditions import ConditionAxis, axes_of, complete, followers, with_weather_curve
-from commission.prediction.expected import TOO_NEAR, Found, beats_carnot, expected_values, frosts
-from commission.prediction.explaining import explain
+from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
+from commission.prediction.explaining import add_part, drop_vague_carnot, explain
 from commission.prediction.facts import Facts, facts_of, left_out
-from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, frost_notes
+from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, frost_notes, inputs_found
 from commission.prediction.guard import in_words
 from commission.prediction.limits import beyond_limits
 from commission.prediction.operation import told_of_operation
@@ -23,7 +23,7 @@ from commission.prediction.refusals import cannot_be, fitted, walk
 from commission.prediction.settings import HeldOff, held_off
 from commission.prediction.streams import at_a_stage, media
 from commission.properties import Refrigerant
-from commission.quantities import Explained, Input, Kind
+from commission.quantities import Explained, Input
 
 PROPERTY = "property source"
 RATED_FIGURES = (
@@ -31,8 +31,6 @@ RATED_FIGURES = (
     "compressor_power", "power_input",
 )  # fmt: skip
 """Quantities that carry the scatter of rated points about the fit themselves."""
-VAGUE = 0.2
-"""Standard uncertainty over value from which a Carnot COP is not told."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -317,9 +315,9 @@ class SystemModel:
         for cause, change, _ in self._changes(whole, unread, nominal, point, starts):
             for key, amount in change.items():
                 if abs(amount) > ROUNDING * abs(nominal.values[key]):
-                    _add_part(parts[key], cause, amount)
+                    add_part(parts[key], cause, amount)
         self._own_parts(nominal, parts)
-        _drop_vague_carnot(nominal, parts)
+        drop_vague_carnot(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
         warnings = [*outside, *point.warnings, *self.refrigerant.warnings, *self.left_out]
         if frosts(self.facts, point):
@@ -353,29 +351,14 @@ class SystemModel:
         if self.fit.scatter > 0:
             for key in RATED_FIGURES:
                 if key in nominal.values:
-                    _add_part(parts[key], SCATTER, self.fit.scatter * nominal.values[key])
+                    add_part(parts[key], SCATTER, self.fit.scatter * nominal.values[key])
             for key in ("cooling_cop", "heating_cop", "heating_cop_with_defrosts"):
                 if key in nominal.values:
-                    _add_part(parts[key], SCATTER, math.sqrt(2) * self.fit.scatter * nominal.values[key])
+                    add_part(parts[key], SCATTER, math.sqrt(2) * self.fit.scatter * nominal.values[key])
 
 
 ROUNDING = 1e-9
 """Relative change of a value below which a cause does not move it: solver and properties agree to that."""
-
-
-def _drop_vague_carnot(nominal: Found, parts: Mapping[str, Mapping[str, float]]) -> None:
-    """Takes a Carnot COP out that is known no better than to a fifth: the media lie near each other."""
-    value = nominal.values.get("carnot_cop")
-    if value is not None and math.hypot(*parts["carnot_cop"].values()) > VAGUE * value:
-        del nominal.values["carnot_cop"]
-        nominal.reasons["carnot_cop"] = TOO_NEAR
-
-
-def _add_part(parts: dict[str, float], cause: str, amount: float) -> None:
-    """Add a contribution; several independent ones of one cause (the scatter moves the fit in several directions) are
-    put together as their root sum of squares, with the sign of the first."""
-    first = parts.get(cause)
-    parts[cause] = amount if first is None else math.copysign(math.hypot(first, amount), first)
 
 
 NOMINAL_STEP = {
@@ -408,34 +391,11 @@ def fit(loaded: LoadedPlant, system_id: str) -> SystemModel:
         condition_axes=axes,
         assumptions=found.used,
         design_sources=tuple(c.origin for c in found.cases),
-        fitted=_fitted(facts, found),
+        fitted=inputs_found(facts, found),
         fit=found,
         facts=facts,
         left_out=(*notes, *frost_notes(found), *doubts(found)),
     )
-
-
-def _fitted(facts: Facts, found: Fit) -> dict[str, Input]:
-    """What the fit found, for review: efficiencies at the rated points, levels, conductances."""
-    machine = found.plan.machine
-    point = found.points[reference(found.cases)]
-    balance = point.balance
-    assert balance is not None
-    values: list[tuple[str, float, Kind]] = [
-        ("isentropic efficiency at the rated point", point.compression.isentropic_efficiency, Kind.RATIO),
-        ("swept flow times volumetric level", found.levels.swept_flow, Kind.VOLUME_FLOW),
-        ("conductance of the condenser", machine.condenser.conductance, Kind.CONDUCTANCE),
-        ("conductance of the evaporator", machine.evaporator.conductance, Kind.CONDUCTANCE),
-        ("evaporating temperature at the rated point", balance.evaporating_temperature, Kind.TEMPERATURE),
-    ]
-    if balance.condensing_temperature is not None:
-        values.append(("condensing temperature at the rated point", balance.condensing_temperature, Kind.TEMPERATURE))
-    volumetric = point.compression.volumetric_efficiency
-    if facts.system.compressor.displacement is not None and volumetric is not None:
-        values.insert(0, ("volumetric efficiency at the rated point", volumetric, Kind.RATIO))
-    if found.dof:
-        values.append(("scatter of rated points about the fit", found.scatter, Kind.RATIO))
-    return {name: Input(name, value, kind, "fitted") for name, value, kind in values}
 
 
 __all__ = ["CommissionError", "Prediction", "SystemModel", "fit"]
