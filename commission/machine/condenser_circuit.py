@@ -17,7 +17,7 @@ from commission.errors import NotCalculatedError
 from commission.machine.circuit import Circuit, between, positive, within_reach
 from commission.machine.head_pressure import HeadPressure, fan_share, flow_share, heat_per_kelvin, share_for
 from commission.machine.operating_point import Balance, Media, StatePoint
-from commission.machine.solver import Residuals, Solution, solve
+from commission.machine.solver import NoSolutionError, Residuals, Solution, solve
 from commission.properties import State
 
 if TYPE_CHECKING:
@@ -34,6 +34,8 @@ USUAL = ((0.13, 0.01), (0.035, 0.105))
 """Slopes of both gaps by both unknowns to start from. Gaps count in tens of kelvin of their exchanger, which makes the
 slopes much alike for all machines: a tenth, and what capacity changes by for a kelvin (3 % by evaporation, 1 % by
 condensation). They save the differences at the start; where they do not lead on, the solver takes those."""
+NEARER = 0.3
+"""Share of the usual differences to both media from which a compressor starts that reaches no further."""
 COLDEST = 230.0
 """Temperature in K that no liquid has as it enters a condenser; a trial far from the balance could come to less."""
 
@@ -149,7 +151,14 @@ class CondenserCircuit(Circuit):
             return *self.low_gaps(x, found), self.sink_gap(condensing, found.heat_to_sink, share)
 
         low = self.low_guess()
-        solution = _solved(gaps, (*low, self.guess()), start, jacobian=USUAL if len(low) == 1 else None)
+        usual, nearer = (*low, self.guess()), (NEARER * low[0], *low[1:], self.guess(nearer=True))
+        jacobian = USUAL if len(low) == 1 else None
+        try:
+            solution = _solved(gaps, usual, start, jacobian=jacobian)
+        except NoSolutionError:
+            raise
+        except NotCalculatedError:  # at the usual lift this compressor delivers no gas: begin nearer to the media
+            solution = _solved(gaps, nearer, start, jacobian=jacobian)
         evaporating, superheat = self.controlled(solution.x)
         return self.result(evaporating, solution.x[-1], superheat, share, regime, solution)
 
@@ -264,10 +273,12 @@ class CondenserCircuit(Circuit):
         solution = _solved(gaps, (self.guess(),), start)
         return self.result(evaporating, solution.x[0], self.machine.superheat, 1.0, FREE, solution)
 
-    def guess(self) -> float:
-        """Condensing temperature (K) to start from."""
+    def guess(self, nearer: bool = False) -> float:
+        """Condensing temperature (K) to start from, the usual one or a `nearer` one to the sink."""
         source, sink = self.media.source.temperature, self.media.sink.temperature
-        return min(max(sink + 10.0, source + 7.0), 0.94 * self.machine.refrigerant.T_critical)
+        return min(
+            max(sink + (NEARER if nearer else 1.0) * 10.0, source + 7.0), 0.94 * self.machine.refrigerant.T_critical
+        )
 
     def result(
         self, evaporating: float, condensing: float, superheat: float, share: float, regime: str, solution: Solution

@@ -85,6 +85,19 @@ def test_a_few_random_machines(name: str) -> None:
     _check(name, 6)
 
 
+def test_a_lift_at_which_the_cylinder_only_just_fills() -> None:
+    """At -29.5 °C against 14 °C the gas of R-1336mzz(Z) left in the clearance fills the cylinder at the usual first
+    guess; nearer to the media there is a balance, with little flow."""
+    fluid = refrigerant("R-1336mzz(Z)")
+    compressor = Compressor(0.4, 0.95, 0.9, RECIPROCATING, 0.05)
+    machine = SingleStage(fluid, compressor, Exchanger(700.0, 0.6, 0.5, 0.75), Exchanger(600.0, 0.8, 0.5), 6.0, 2.0,
+                          SuctionLine(1.0, warming=3.0), 0.4)  # fmt: skip
+    media = Media(air_stream(243.6, 0.6, 0.8, 101325.0), air_stream(287.2, 0.8, 0.4, 101325.0), 293.15)
+    balance = machine.operate(media).balance
+    assert balance.compression.flow > 0
+    assert 243.6 - 8.0 < balance.evaporating_temperature < 243.6
+
+
 @pytest.mark.long
 @pytest.mark.parametrize("name", _names())
 def test_many_random_machines(name: str) -> None:
