@@ -6,7 +6,7 @@ from collections.abc import Callable, Mapping
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
-from commission.safety import charge_limits, rated_capacity, relief_valves
+from commission.safety import charge_limits, fluid_of, rated_capacity, relief_valves
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
@@ -159,6 +159,31 @@ def _mildest(points: list[CurvePoint], limit: float | None) -> dict[str, float]:
     return {"outdoor": outdoor, "flow": before.flow + share * (last.flow - before.flow)}
 
 
+ABOVE_ICE = 3.0
+"""K of saturation above the freezing point of a liquid that stands in an exchanger; more in pressure than gauges err
+(common practice, no source)."""
+ABOVE_DRY_ICE = 10e5
+"""Pa; nearly twice the triple-point pressure of carbon dioxide, 5.18 bar (Span and Wagner 1996; margin by common
+practice)."""
+
+
+def _vapour_pressure(facts: Facts, _: str) -> float | None:
+    """The pressure above which neither the liquid in an exchanger nor the refrigerant itself can freeze, Pa. Of a blend
+    it is the pressure of the bubble point, at which boiling begins coldest."""
+    found = [_freezing_point(side)(facts, "") for side in ("heat_source", "heat_sink")]
+    freezing = [point for point in found if point is not None]
+    least = [fluid_of(facts.loaded, facts.system_id).bubble(max(freezing) + ABOVE_ICE).p] if freezing else []
+    if facts.substance.components == ("R-744",):
+        least.append(ABOVE_DRY_ICE)
+    return max(least, default=None)
+
+
+def _guarded(facts: Facts) -> bool:
+    """A room in which nobody can be sent without warning: gas gathers below ground, or the rules ask for a detector."""
+    space = facts.space("condensing_unit")
+    return space is not None and not space.outdoors and bool(space.below_ground or space.leak_detector)
+
+
 DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
     {
         "fluid.name": lambda f, _: f.substance.name,
@@ -199,6 +224,8 @@ DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "curve.middle_flow": _curve("middle", "flow"),
         "curve.mildest_outdoor": _curve("mildest", "outdoor"),
         "curve.mildest_flow": _curve("mildest", "flow"),
+        "machinery.guarded": lambda f, _: _guarded(f),
+        "charging.vapour_pressure": _vapour_pressure,
         "piped.on_site": lambda f, _: not f.system.sealed,
         "unit.charged": lambda f, _: _charged(f),
         "unit.extra_charge": lambda f, _: _extra_charge(f),

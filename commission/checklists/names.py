@@ -84,6 +84,16 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
             for which in ("coldest", "middle", "mildest")
             for key, says in (("outdoor", "outdoor temperature"), ("flow", "flow temperature"))
         },
+        "machinery.guarded": (
+            "yes/no",
+            "the condensing unit stands indoors, below ground or in a room with a refrigerant detector",
+            (),
+        ),
+        "charging.vapour_pressure": (
+            Kind.PRESSURE,
+            "pressure up to which vapour alone is let in: above ice in the exchangers, and above dry ice",
+            (),
+        ),
         "words.system": ("text", "name of the system", ()),
         "words.evaporator_space": ("text", "name of the space of the evaporator", ()),
         "words.condensing_space": ("text", "name of the space of the condensing unit", ()),

@@ -181,6 +181,49 @@ def test_detectors_are_proved_before_there_is_gas(listed: tuple[Item, ...]) -> N
         assert not after(listed, proof, LETS_IN), proof
 
 
+def test_nobody_opens_a_cylinder_bare_handed(listed: tuple[Item, ...]) -> None:
+    """Liquid that escapes freezes skin and eyes: gloves and goggles or visor are on before the first gas, with ammonia
+    a mask; card and label hang (EN 378-4; common practice)."""
+    order = ids(listed)
+    if "charging.weigh" not in order:
+        return
+    worn = [item for item in listed if "gloves" in item.do and re.search("goggles|visor|full-face", item.do)]
+    assert worn
+    assert not after(listed, worn[0].id, LETS_IN)
+    assert ("mask" in worn[0].do) is ("readiness.breathing" in order)
+    for sign in ("handover.card", "handover.label"):
+        assert not after(listed, sign, LETS_IN), sign
+
+
+def test_liquid_is_let_in_once_and_never_onto_still_water(listed: tuple[Item, ...], substance: Substance) -> None:
+    """An exchanger with a liquid in it, on either side, sees vapour alone until the refrigerant boils above its freezing
+    point; once only stands a start of liquid on a list (common practice)."""
+    order = ids(listed)
+    if "flows.flushed" not in order or "charging.weigh" not in order:
+        return
+    assert order.index("charging.water-flows") < order.index("charging.vapour-first") < order.index("charging.weigh")
+    target = item_of(listed, "charging.vapour-first").must_read
+    bar = AT_FREEZING[substance.name]
+    assert target is not None
+    assert target.low is not None
+    assert 1.05 * bar < target.low / 1e5 < 1.15 * bar
+    assert [item.id for item in listed if re.search("then liquid|Liquid, now", item.how or "")] == ["charging.weigh"]
+    assert not any("then liquid" in item.must_read.text for item in listed if item.must_read)
+
+
+AT_FREEZING = {"R-744": 34.85, "R-717": 4.29, "R-134a": 2.93}
+"""Saturation pressure at 0 °C, bar: Span and Wagner 1996, Tillner-Roth et al. 1993, Tillner-Roth and Baehr 1994."""
+
+
+def test_nobody_charges_alone_in_a_room_that_can_fill(listed: tuple[Item, ...]) -> None:
+    """In a machinery room below ground or with a detector the fan runs and a second person stands at the door, whatever
+    the refrigerant (EN 378-3, EN 378-4)."""
+    order = ids(listed)
+    if "installation.ventilation" in order and "charging.weigh" in order:
+        assert not after(listed, "charging.air", LETS_IN)
+        assert not after(listed, "charging.two-people", LETS_IN)
+
+
 def test_nobody_stands_by_while_refrigerant_is_let_in(listed: tuple[Item, ...]) -> None:
     """Wherever a circuit is charged on site, the place is closed first (EN 378-4; common practice)."""
     charged = "charging.weigh" in ids(listed)
