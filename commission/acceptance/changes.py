@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+import itertools
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, replace
 
 from commission.acceptance.budget import Budget, Component
 from commission.acceptance.decision import Decision
-from commission.quantities import NOMENCLATURE
+from commission.quantities import NOMENCLATURE, Quantity
 
 _MOST_SAMPLES = 10_000
 
@@ -18,9 +19,10 @@ class Change:
     """One change of a test.
 
     `causes` are the causes (or names) of the components to make smaller, together `factor` times what they are;
-    `names` says the same in words for a person; `samples` is the number of samples to take instead, for a spread;
-    `remedies` say how. `of` is the quantity that each arises in (a nomenclature key or words), `before` and `after` its
-    standard uncertainty there, in the SI unit of that quantity.
+    `names` are their names and `about` the readings that they belong to (a nomenclature key, or empty); `samples` is
+    the number of samples to take instead, for a spread; `remedies` say how. `of` is the quantity that each arises in
+    (a nomenclature key or words), `before` and `after` its standard uncertainty there, in the SI unit of that
+    quantity.
     """
 
     causes: tuple[str, ...]
@@ -31,11 +33,12 @@ class Change:
     of: tuple[str, ...] = ()
     before: tuple[float, ...] = ()
     after: tuple[float, ...] = ()
+    about: tuple[str, ...] = ()
 
-    @property
-    def text(self) -> str:
-        """The change as a sentence for a person."""
-        what = " and ".join(self.names)
+    def text(self, quantities: Mapping[str, Quantity] = NOMENCLATURE) -> str:
+        """The change as a sentence for a person, with the `quantities` as the system calls them."""
+        named = itertools.zip_longest(self.names, self.about, fillvalue="")
+        what = " and ".join(f"{name} ({quantities[of].words})" if of else name for name, of in named)
         how = f" ({'; '.join(self.remedies)})" if self.remedies else ""
         if self.samples is not None:
             return f"take {self.samples} samples for {what}{how}"
@@ -85,10 +88,16 @@ def apply_change(budget: Budget, change: Change) -> Budget:
     return Budget(tuple(moved(c) for c in budget.components), budget.warnings)
 
 
-def with_advice(decision: Decision, budget: Budget, other_ways: tuple[str, ...] = ()) -> Decision:
+def with_advice(
+    decision: Decision,
+    budget: Budget,
+    other_ways: tuple[str, ...] = (),
+    quantities: Mapping[str, Quantity] = NOMENCLATURE,
+) -> Decision:
     """The decision with `what_would_decide` filled in, where it is undecided and anything would.
 
-    `other_ways` are sentences for changes outside the budget, such as another route, in order of effort.
+    `other_ways` are sentences for changes outside the budget, such as another route, in order of effort;
+    `quantities` is the nomenclature of the system.
     """
     if decision.outcome != "undecided":
         return decision
@@ -96,7 +105,7 @@ def with_advice(decision: Decision, budget: Budget, other_ways: tuple[str, ...] 
     if decision.uncertainty_needed is not None:
         change = smallest_change(budget, decision.uncertainty_needed, decision.confidence)
     if change is not None:
-        return replace(decision, what_would_decide=change.text)
+        return replace(decision, what_would_decide=change.text(quantities))
     if decision.uncertainty_needed is None:
         lies = "the value lies on the limit itself: only another test at another moment can decide"
         return replace(decision, what_would_decide="; ".join((lies, *other_ways)))
@@ -134,16 +143,14 @@ def _change(groups: list[tuple[Component, ...]], factor: float, samples: int | N
     remedies = tuple(dict.fromkeys(c.remedy for c in leading))
     before = tuple(abs(c.value / c.sensitivity) if c.sensitivity else abs(c.value) for c in leading)
     return Change(
-        causes, tuple(_named(c) for c in leading), factor, samples, remedies,
-        tuple(c.of for c in leading), before, tuple(factor * b for b in before),
+        causes, tuple(c.name for c in leading), factor, samples, remedies,
+        tuple(c.of for c in leading), before, tuple(factor * b for b in before), tuple(_about(c) for c in leading),
     )  # fmt: skip
 
 
-def _named(component: Component) -> str:
-    """A component in words: which reading, and what of it."""
-    known = NOMENCLATURE.get(component.of)
-    about = known is not None and component.cause.startswith(f"{component.of}:")
-    return f"{component.name} ({known.words})" if known is not None and about else component.name
+def _about(component: Component) -> str:
+    """The reading that a component belongs to, where its name does not say it already."""
+    return component.of if component.of in NOMENCLATURE and component.cause.startswith(f"{component.of}:") else ""
 
 
 def _largest_factor(fits: Callable[[float], bool]) -> float | None:

@@ -234,7 +234,7 @@ def verdict(
     except NotCalculatedError as error:
         return GuaranteeVerdict(terms, None, measured, route, None, None, withheld or str(error), frozen)
     decision, budget = decide_guarantee(terms, measured, carried)
-    decision = with_advice(decision, budget, _other_routes(terms, found, carried, route))
+    decision = with_advice(decision, budget, _other_routes(terms, found, carried, route), names)
     return GuaranteeVerdict(terms, carried.explained, measured, route, budget, decision, withheld, frozen)
 
 

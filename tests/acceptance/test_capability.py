@@ -74,7 +74,7 @@ def test_matched_pair_is_what_makes_it_provable(chiller: LoadedPlant, tmp_path: 
     row = found.guarantees[0]
     assert not row.decided
     assert row.change is not None
-    assert "two probes compared in one bath" in row.change.text
+    assert "two probes compared in one bath" in row.change.text()
 
 
 def test_inlets_without_an_instrument_are_assumed(cold_room: LoadedPlant, tmp_path: Path) -> None:

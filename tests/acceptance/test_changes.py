@@ -42,7 +42,7 @@ def test_gentlest_single_change_is_chosen() -> None:
     assert change is not None
     assert change.causes == ("a",)
     assert change.factor == pytest.approx((9.0 - 4.0 - 0.25) ** 0.5 / 3.0, abs=1.1e-3)
-    assert change.text.startswith("bring the uncertainty from a down to 72 % of what it is (better a)")
+    assert change.text().startswith("bring the uncertainty from a down to 72 % of what it is (better a)")
 
 
 def test_two_changes_where_one_is_not_enough() -> None:
@@ -71,7 +71,7 @@ def test_more_samples() -> None:
     assert apply_change(spread, change).one_sided() <= 0.2
     fewer = type(change)(change.causes, change.names, (4 / (change.samples - 1)) ** 0.5, change.samples - 1)
     assert apply_change(spread, fewer).one_sided() > 0.2
-    assert change.text.startswith(f"take {change.samples} samples for spread of samples")
+    assert change.text().startswith(f"take {change.samples} samples for spread of samples")
 
 
 def test_nothing_to_change() -> None:
@@ -104,6 +104,6 @@ def test_change_in_the_unit_where_it_arises() -> None:
     assert change.of == ("liquid_temperature",)
     assert change.before == (pytest.approx(0.6),)
     assert change.after == (pytest.approx(0.2, abs=1e-3),)
-    assert change.text == (
+    assert change.text() == (
         "bring the uncertainty from clamped on (liquid temperature) down to 33 % of what it is (insulate)"
     )
