@@ -74,7 +74,7 @@ TITLES: Mapping[str, tuple[str, Kind]] = MappingProxyType(
         "room_charge_limit": ("lowest charge limit of the spaces", Kind.MASS),
         "leak_concentration": ("concentration if the whole charge leaks into the smallest space", Kind.DENSITY),
         "leak_share_of_lfl": ("the same, share of the lower flammability limit", Kind.RATIO),
-        "flammable_alarm_level": ("highest alarm level of a gas detector", Kind.DENSITY),
+        "flammable_alarm_level": ("ceiling of the standard for the alarm of a gas detector", Kind.DENSITY),
         "emergency_ventilation": ("emergency ventilation of the machinery room, EN 378-3", Kind.VOLUME_FLOW),
         "emergency_ventilation_ashrae15": ("emergency ventilation of the machinery room, ASHRAE 15", Kind.VOLUME_FLOW),
         "co2_equivalent": ("CO₂ equivalent of the charge", Kind.MASS),

@@ -68,6 +68,16 @@ def _charge(spaces: tuple[SpaceCharge, ...], substance: Substance, out: Collecto
     _concentration(smallest_space(spaces), substance, out)
 
 
+_CEILING = (
+    "a ceiling, no setting: set it as low as its maker allows, below what the whole charge reaches in the smallest "
+    "space"
+)
+_NEVER = (
+    "a ceiling, no setting: the whole charge, evenly mixed in the smallest space, stays below it, so that a detector "
+    "set to it might never alarm; set it as low as its maker allows, well below that concentration"
+)
+
+
 def _concentration(space: SpaceCharge | None, substance: Substance, out: Collector) -> None:
     rule = Fact("dispersal", 0.0, Kind.DENSITY, "definition", "", "C", "charge over volume, evenly mixed")
     lfl = substance.lfl
@@ -77,7 +87,9 @@ def _concentration(space: SpaceCharge | None, substance: Substance, out: Collect
     else:
         value = dispersal_charge(alarm.value * lfl.value, 1.0)
         inputs = (Input("LFL", lfl.value, Kind.DENSITY, f"register: {lfl.source} ({lfl.mark})"), fact_input(alarm))
-        out.add("flammable_alarm_level", value, "safety_rule_figure", inputs, alarm)
+        reached = space.concentration.value if space is not None and space.concentration is not None else None
+        never = reached is not None and reached < value
+        out.add("flammable_alarm_level", value, "safety_rule_figure", inputs, alarm, note=_NEVER if never else _CEILING)
     if space is None or space.concentration is None:
         out.refuse("no closed space with floor area, height and charge stated", "leak_concentration")
         if lfl is not None:
