@@ -74,8 +74,8 @@ def expected_values(facts: Facts, plan: Plan, media: Media, point: OperatingPoin
     _media(facts, plan, media, balance, found)
     if facts.heats_from_air:
         _frost(facts, plan, media, point, found)
-    if facts.source_liquid is not None:
-        del values["net_cooling_capacity"]
+    if facts.source_liquid is not None or heats(facts):
+        del values["net_cooling_capacity"]  # nothing is deducted, or nobody asks what a heat pump cools
     return found
 
 
@@ -179,8 +179,29 @@ def beats_carnot(facts: Facts, values: Mapping[str, float]) -> bool:
 
 
 def frosts(facts: Facts, point: OperatingPoint) -> bool:
-    """Whether an outdoor coil collects frost: its refrigerant is below freezing. In a cold room that is daily work."""
-    return facts.heats_from_air and point.balance.source_drive < 273.15
+    """Whether an outdoor coil may frost: its refrigerant is below freezing. In a cold room that is daily work."""
+    return facts.heats_from_air and point.balance.source_drive < FREEZING
+
+
+FREEZING = 273.15
+
+
+def frost_warning(facts: Facts, plan: Plan, point: OperatingPoint, values: Mapping[str, float]) -> str | None:
+    """What to say of frost on an outdoor coil, by the mean temperature of its fins; None where it is above freezing.
+
+    The fins lie between air and refrigerant by the share of the air side in the resistance to heat. Condensing water
+    warms them, so that they are a little warmer than this.
+    """
+    if not frosts(facts, point):
+        return None
+    outlet, inlet = values["heat_source_outlet_temperature"], point.balance.source_inlet_temperature
+    air, share = 0.5 * (inlet + outlet), plan.machine.evaporator.air_share or 1.0
+    if air - share * (air - point.balance.source_drive) < FREEZING:
+        return "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
+    return (
+        "the refrigerant in the coil is below freezing, its fins on the mean are not: dew runs off, and frost may form "
+        "where they are coldest; the values hold for a clean coil"
+    )
 
 
 def _frost(facts: Facts, plan: Plan, media: Media, point: OperatingPoint, found: Found) -> None:

@@ -44,7 +44,7 @@ METHOD: Mapping[str, str] = {
     "sensible_heat_ratio": "wet_coil",
     "heat_sink_flow": "medium_flow",
     "gas_cooler_outlet_temperature": "gas_cooler_balance",
-    "gas_cooler_approach": "temperature_difference",
+    "gas_cooler_approach": "gas_cooler_difference",
     "heat_source_inlet_temperature": "medium_outlet",
     "heat_sink_inlet_temperature": "medium_outlet",
     "heat_source_outlet_temperature": "medium_outlet",
@@ -96,6 +96,8 @@ _OF_POINT: Mapping[str, tuple[str, ...]] = {
     "carnot_cop": ("heat_source_outlet_temperature", "heat_sink_outlet_temperature"),
     "sensible_heat_ratio": ("cooling_capacity", "evaporating_temperature"),
     "heat_sink_flow": ("heating_capacity",),
+    "heat_source_inlet_temperature": ("cooling_capacity",),
+    "heat_sink_inlet_temperature": ("heating_capacity",),
     "heat_source_outlet_temperature": ("cooling_capacity",),
     "heat_source_outlet_wet_bulb": ("cooling_capacity", "sensible_heat_ratio"),
     "heat_sink_outlet_temperature": ("heating_capacity",),
@@ -135,6 +137,10 @@ _MEDIA: Mapping[str, tuple[str, ...]] = {
     ),
     "heat_sink_outlet_temperature": ("heat_sink_inlet_temperature", "heat_sink_flow"),
     "heat_sink_flow": ("heat_sink_inlet_temperature", "heat_sink_outlet_temperature"),
+    "heat_source_inlet_temperature": ("heat_source_outlet_temperature", "heat_source_flow"),
+    "heat_sink_inlet_temperature": ("heat_sink_outlet_temperature", "heat_sink_flow"),
+    "heat_source_temperature_change": ("heat_source_flow",),
+    "heat_sink_temperature_change": ("heat_sink_flow",),
 }
 """Conditions that each value is calculated from."""
 
@@ -170,7 +176,12 @@ def explain(
         inputs += stated.get(key, ())
         named = [c for c, v in own.items() if c in fit.used and abs(v) >= NOTICED * uncertainty]
         named.sort(key=lambda c: -abs(own[c]))
-        inputs += [Input(c, fit.values[c], fit.used[c].kind, f"assumption {c}") for c in named]
+        told = {i.origin for i in inputs}
+        inputs += [
+            Input(c, fit.values[c], fit.used[c].kind, origin)
+            for c in named
+            if (origin := f"assumption {c}") not in told
+        ]
         at = bounds(key, conditions)
         table[key] = Explained(key, value, uncertainty, methods[key], tuple(inputs), tuple(named), at)
     return table

@@ -10,7 +10,7 @@ from commission.description import Assumption, LoadedPlant
 from commission.errors import CommissionError, InputError, NotCalculatedError, Problem
 from commission.machine import OperatingPoint, StatePoint, solve
 from commission.prediction.conditions import ConditionAxis, axes_of, complete, followers, with_weather_curve
-from commission.prediction.expected import Found, beats_carnot, expected_values, frosts
+from commission.prediction.expected import Found, beats_carnot, expected_values, frost_warning
 from commission.prediction.explaining import add_part, drop_vague_carnot, explain
 from commission.prediction.facts import Facts, facts_of, left_out
 from commission.prediction.fitting import SCATTER, Fit, doubts, fit_system, frost_notes, inputs_found
@@ -320,10 +320,9 @@ class SystemModel:
         drop_vague_carnot(nominal, parts)
         expected = explain(self.facts, self.fit, whole, point, nominal, parts)
         warnings = [*outside, *point.warnings, *self.refrigerant.warnings, *self.left_out]
-        if frosts(self.facts, point):
-            warnings.append(
-                "the coil is below freezing and collects frost: the values hold for a clean coil, between defrosts"
-            )
+        frost = frost_warning(self.facts, self.fit.plan, point, nominal.values)
+        if frost is not None:
+            warnings.append(frost)
         warnings += told_of_operation(self.facts, whole, point)
         warnings += beyond_limits(self.facts, nominal.values, whole)
         if beats_carnot(self.facts, nominal.values):

@@ -136,7 +136,7 @@ def _all(source: MediumName, sink: MediumName) -> tuple[Quantity, ...]:
                  f"heat given to the {sink.name}, averaged over whole cycles of frost and defrost"),
         Quantity("heating_cop_with_defrosts", "COP_h,d", "COP of heating with defrosts", N,
                  f"heat to the {sink.name} over power input, both averaged over whole cycles of frost and defrost"),
-        Quantity("carnot_cop", "COP_C", "Carnot COP", N,
+        Quantity("carnot_cop", "COP_C", "Carnot COP between mean media", N,
                  "highest COP that any machine could reach between the entropic mean temperatures of the two media"),
         Quantity("sensible_heat_ratio", "SHR", "Sensible heat ratio", R,
                  "share of the cooling capacity that cools the air without drying it"),

@@ -109,3 +109,31 @@ def test_outside_the_range_of_the_method_there_is_a_reason(steady: SystemModel) 
     assert HEAT not in there.expected
     assert COP not in there.expected
     assert "from −8.3 to 7.2 °C outdoors only" in there.not_calculated[HEAT]
+
+
+def test_fins_above_freezing_may_frost_and_fins_below_do(example: LoadedPlant) -> None:
+    """Refrigerant a little below 0 °C leaves the fins above it: dew, and frost at most where they are coldest."""
+    model = fit(example, "shower-water")
+    mild, cold = model.predict(), model.predict({"heat_source_inlet_temperature": 273.15})
+    assert mild.expected["evaporating_temperature"].value < 273.15
+    assert any("dew runs off, and frost may form" in w for w in mild.warnings)
+    assert any("below freezing and collects frost" in w for w in cold.warnings)
+    warm = model.predict({"heat_source_inlet_temperature": 288.15})
+    assert not any("frost" in w for w in warm.warnings)
+
+
+def test_a_heat_pump_has_no_net_cooling_capacity(example: LoadedPlant) -> None:
+    """Nobody asks what it cools; where cooling is the duty the fan's heat is deducted."""
+    assert "net_cooling_capacity" not in fit(example, "shower-water").predict().expected
+    assert "net_cooling_capacity" in fit(example, "cold-room").predict().expected
+
+
+def test_inputs_are_told_once_and_a_worked_back_inlet_names_what_it_comes_from(example: LoadedPlant) -> None:
+    """No value lists an input twice; an inlet that follows from a rated outlet lists outlet, flow and heat."""
+    for system in ("floor-heating", "shower-water", "dining-hall"):
+        for explained in fit(example, system).predict().expected.values():
+            told = [(i.name, i.origin) for i in explained.inputs]
+            assert len(told) == len(set(told)), explained.quantity
+    inlet = fit(example, "floor-heating").predict().expected["heat_sink_inlet_temperature"]
+    wanted = {"heat_sink_outlet_temperature", "heat_sink_flow", "heating_capacity"}
+    assert wanted <= {i.name for i in inlet.inputs}

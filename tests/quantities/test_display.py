@@ -116,7 +116,7 @@ def test_names_of_media_stand_in_every_label_and_definition() -> None:
     assert display.label("evaporator_temperature_difference") == "Room air inlet minus evaporating"
     assert display.words("heating_capacity") == "heat to the condenser water"
     assert display.words("cooling_cop") == "COP of cooling"
-    assert display.words("carnot_cop") == "Carnot COP"
+    assert display.words("carnot_cop") == "Carnot COP between mean media"
     assert display.short("heat_source_inlet_temperature") == "Room air"
     assert display.short("heat_sink_outlet_temperature") == "Condenser water outlet"
     assert display.medium("heat_sink") == "Condenser water"
