@@ -88,7 +88,7 @@ def at_a_glance(
         shown.append(
             GlanceSystem(
                 data.name,
-                _system_line(data, plant.display),
+                _system_line(data, data.display),
                 steps(standing),
                 step,
                 doors,
@@ -118,13 +118,36 @@ def _system_line(data: SystemData, display: Display) -> str:
     parts = [DUTY_WORDS.get(s.duty, s.duty), s.refrigerant]
     if s.charge is not None:
         parts[-1] += f", {display.text(s.charge, Kind.MASS)}"
-    rated = data.rated.expected.get("cooling_capacity") if data.rated else None
-    if rated is not None and s.duty not in ("space_heating", "water_heating"):
-        parts.append(f"{display.text(rated.value, Kind.HEAT_FLOW, 1)} cooling")
-    heat = data.rated.expected.get("heating_capacity") if data.rated else None
-    if heat is not None and s.duty in ("space_heating", "water_heating"):
-        parts.append(f"{display.text(heat.value, Kind.HEAT_FLOW, 1)} heating")
+    capacity = _promised(data, display) or _rated(data, display)
+    if capacity is not None:
+        parts.append(capacity)
     return " · ".join(parts)
+
+
+_CAPACITIES = {
+    "net_cooling_capacity": "net cooling", "cooling_capacity": "cooling", "heating_capacity": "heating",
+}  # fmt: skip
+
+
+def _promised(data: SystemData, display: Display) -> str | None:
+    """The capacity that the contract promises, with its condition, as nameplate and certificate have it."""
+    found = next((g for g in data.system.guarantee if g.quantity in _CAPACITIES), None)
+    if found is None:
+        return None
+    at = [
+        f"{display.short(key)} {display.of(key, value)}"
+        for key in ("heat_source_inlet_temperature", "heat_sink_inlet_temperature", "heat_sink_outlet_temperature")
+        if (value := getattr(found.at, key)) is not None
+    ]
+    text = f"{display.text(found.value_si, Kind.HEAT_FLOW)} {_CAPACITIES[found.quantity]} promised"
+    return f"{text} ({', '.join(at)})" if at else text
+
+
+def _rated(data: SystemData, display: Display) -> str | None:
+    """The capacity that is calculated at the rated condition, where nothing is promised."""
+    key = "heating_capacity" if data.system.duty in ("space_heating", "water_heating") else "cooling_capacity"
+    rated = data.rated.expected.get(key) if data.rated else None
+    return None if rated is None else f"{display.text(rated.value, Kind.HEAT_FLOW, 1)} {_CAPACITIES[key]}"
 
 
 def _summary(plant: PlantData) -> str:

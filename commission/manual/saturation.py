@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from commission.errors import NotCalculatedError
 from commission.manual.book import Sheet
@@ -10,7 +12,11 @@ from commission.manual.gather import PlantData, SystemData
 from commission.manual.showing import unit_of
 from commission.quantities import Display, Kind
 
+if TYPE_CHECKING:
+    from commission.properties import Refrigerant
+
 _ZERO_C = 273.15
+_NEAR_CRITICAL = 0.98
 _BLOCK = 26
 
 
@@ -24,13 +30,29 @@ class SaturationRow:
     strong: bool
 
 
-def table_temperatures(low: float, high: float, display: Display) -> tuple[float, ...]:
-    """Whole degrees from −40 °C to +63 °C in the unit of the site (every 2 °F), cut to what is known; in K."""
+def table_temperatures(low: float, high: float, display: Display, limit: float = 0.0) -> tuple[float, ...]:
+    """Whole degrees from −40 °C to +63 °C in the unit of the site (every 2 °F), cut to what is known; in K.
+
+    They go on up to `limit` (K), the saturation temperature of the highest pressure limit, where that is higher.
+    """
     if display.system == "metric":
-        wanted = [n + _ZERO_C for n in range(-40, 64)]
+        wanted = [n + _ZERO_C for n in range(-40, max(64, math.ceil(limit - _ZERO_C) + 1))]
     else:
-        wanted = [(n - 32) / 1.8 + _ZERO_C for n in range(-40, 148, 2)]
+        last = 2 * math.ceil(((limit - _ZERO_C) * 1.8 + 32) / 2)
+        wanted = [(n - 32) / 1.8 + _ZERO_C for n in range(-40, max(148, last + 2), 2)]
     return tuple(t for t in wanted if low <= t <= high)
+
+
+def _highest_limit(plant: PlantData, data: SystemData, fluid: Refrigerant) -> float:
+    """Saturation temperature (K) of the highest pressure limit that is described; 0 where there is none, or none below
+    the critical pressure."""
+    from commission.safety import relief_valves
+
+    controls, plate = data.system.controls, data.system.nameplate
+    stated = [controls.high_pressure_limit, plate.allowable_pressure_high, *relief_valves(data.system).values()]
+    found = [plant.loaded.absolute(p) for p in stated if p is not None]
+    below = [p for p in found if p < _NEAR_CRITICAL * fluid.p_critical]
+    return fluid.dew_temperature(max(below)) if below else 0.0
 
 
 def saturation_page(plant: PlantData, data: SystemData) -> Sheet:
@@ -48,7 +70,7 @@ def _context(plant: PlantData, data: SystemData) -> dict[str, object]:
     display = plant.display
     try:
         fluid = fluid_of(plant.loaded, data.id)
-        temperatures = table_temperatures(fluid.T_low, fluid.T_high, display)
+        temperatures = table_temperatures(fluid.T_low, fluid.T_high, display, _highest_limit(plant, data, fluid))
         table = saturation_table(fluid, plant.loaded.barometric_pressure, temperatures)
     except NotCalculatedError as error:
         return {"because": error.problems[0].message}

@@ -165,7 +165,7 @@ def show_input(item: Input, display: Display) -> ShownInput:
     match = _ASSUMPTION.match(item.origin)
     kind = display.kind(item.name) if item.name in display.quantities else item.kind
     return ShownInput(
-        name=label_of(item.name, display),
+        name=item.name.replace("_", " ") if match else label_of(item.name, display),
         value=value_text(item.value, kind, display),
         origin=item.origin,
         assumption=match.group(1) if match else None,

@@ -157,13 +157,17 @@ class GridRow:
 
 @dataclass(frozen=True, slots=True)
 class GridTable:
-    """The grid as a table of text: temperatures across, quantities down; `notes` say why a column is empty."""
+    """The grid as a table of text: temperatures across, quantities down.
+
+    `notes` say why a column is empty, `gaps` why a single cell is: quantity, temperatures, reason.
+    """
 
     title: str
     unit: str
     heads: tuple[str, ...]
     rows: tuple[GridRow, ...]
     notes: tuple[tuple[str, str], ...]
+    gaps: tuple[tuple[str, str, str], ...] = ()
 
 
 def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | None:
@@ -178,7 +182,20 @@ def grid_table(data: SystemData, grid: Grid, display: Display) -> GridTable | No
         tuple(_head(p, display) for p in grid.shown),
         tuple(_grid_row(data, k, grid.shown, good, display) for k in keys),
         reasons_in_words(grid, display),
+        _gaps(grid, keys, display),
     )
+
+
+def _gaps(grid: Grid, keys: list[str], display: Display) -> tuple[tuple[str, str, str], ...]:
+    """Why a quantity has no value at some temperatures of the table, where it has one at others."""
+    found: dict[tuple[str, str], list[str]] = {}
+    for point in grid.shown:
+        reasons = point.prediction.not_calculated if point.prediction else {}
+        for key in keys:
+            if key in reasons:
+                found.setdefault((key, reasons[key]), []).append(_head(point, display))
+    unit = unit_of(display, Kind.TEMPERATURE)
+    return tuple((display.label(k), f"{', '.join(heads)} {unit}", why) for (k, why), heads in found.items())
 
 
 def reasons_in_words(grid: Grid, display: Display) -> tuple[tuple[str, str], ...]:

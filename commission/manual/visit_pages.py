@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from typing import TYPE_CHECKING, Any
 
 from commission.errors import CommissionError
@@ -97,6 +98,9 @@ def _guarantee(display: Display, g: FrozenGuarantee) -> dict[str, Any]:
     }
 
 
+STAYS_IN_GAS = "the power that stays in the gas (compressor power less what leaves through its shell)"
+
+
 def _closure(display: Display, c: FrozenClosure) -> dict[str, Any]:
     """Two routes held against each other, as a sentence and whether they agree."""
     kind = display.kind("cooling_capacity" if c.quantity == "first law" else c.quantity)
@@ -105,7 +109,7 @@ def _closure(display: Display, c: FrozenClosure) -> dict[str, Any]:
     )
     if c.quantity == "first law":
         given, taken = display.label("heating_capacity"), display.words("cooling_capacity")
-        text = f"{given} ({c.second}) less {taken} ({c.first}) less power: {difference}"
+        text = f"{given} ({c.second}) less {taken} ({c.first}) less {STAYS_IN_GAS}: {difference}"
     else:
         text = f"{display.label(c.quantity)} by {c.first} less that by {c.second}: {difference}"
     return {"text": text, "agree": not c.significant}
@@ -147,17 +151,30 @@ def _standing(record: FiledRecord, archive: Archive) -> list[dict[str, Any]]:
     return found
 
 
+def results_among(data: SystemData, keys: Iterable[str]) -> frozenset[str]:
+    """Of the quantities that a record holds under its conditions, those that the machine itself makes so.
+
+    A medium is read at both ends in one place; how it leaves is a result, but where the machine is given it.
+    """
+    given = data.rated.conditions if data.rated is not None else {}
+    return frozenset(k for k in keys if "_outlet_" in k and k not in given)
+
+
 def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Archive) -> dict[str, Any]:
     """What record page and certificate share."""
     display = page_display(plant.loaded, data.id, record.filed.barometric_pressure)
     filed, file = record.filed, record.file
+    results = results_among(data, filed.conditions)
     return {
         "record": record,
         "when": when(record),
         "name": title_of(record),
         "look": VERDICT_CLASS[record.verdict],
         "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [_reading(display, k, r, file.conditions) for k, r in filed.conditions.items()],
+        "conditions": [
+            _reading(display, k, r, file.conditions) for k, r in filed.conditions.items() if k not in results
+        ],
+        "results": [_reading(display, k, r, file.conditions) for k, r in filed.conditions.items() if k in results],
         "air": f"{filed.barometric_pressure / 100:.0f} hPa"
         + ("" if filed.barometer_measured else ", not measured: from the altitude"),
         "guarantees": [_guarantee(display, g) for g in filed.guarantees],

@@ -33,6 +33,7 @@ from commission.manual.states import (
     where_they_stand,
 )
 from commission.manual.upkeep_pages import NextDuty
+from commission.manual.visit_pages import results_among
 from commission.quantities import Display, Explained, Input, Kind
 
 METRIC = Display("metric", 97655.0)
@@ -177,6 +178,21 @@ def test_saturation_temperatures_are_whole_degrees_of_the_site() -> None:
     fahrenheit = [round(t * 1.8 - 459.67, 6) for t in table_temperatures(200.0, 369.0, US)]
     assert fahrenheit[:2] == [-40.0, -38.0]
     assert table_temperatures(250.0, 260.0, METRIC)[0] == pytest.approx(250.15)
+
+
+def test_the_saturation_table_goes_on_to_the_highest_pressure_limit() -> None:
+    """A limiter that acts above 63 °C stands on the page; what is known ends it all the same."""
+    assert table_temperatures(200.0, 369.0, METRIC, 350.85)[-1] == pytest.approx(351.15)
+    assert table_temperatures(200.0, 345.0, METRIC, 350.85)[-1] == pytest.approx(344.15)
+    assert table_temperatures(200.0, 369.0, METRIC, 330.0)[-1] == pytest.approx(336.15)
+    assert table_temperatures(200.0, 369.0, US, 350.85)[-1] * 1.8 - 459.67 == pytest.approx(172.0)
+
+
+def test_how_a_medium_left_is_a_result_and_no_condition_unless_the_machine_is_given_it() -> None:
+    """A record holds both ends of a medium in one place; an outlet that the machine is rated by stays a condition."""
+    data: Any = SimpleNamespace(rated=SimpleNamespace(conditions={"heat_sink_outlet_temperature": 333.15}))
+    keys = ("heat_source_inlet_temperature", "heat_source_outlet_temperature", "heat_sink_outlet_temperature")
+    assert results_among(data, keys) == {"heat_source_outlet_temperature"}
 
 
 def test_figures_are_the_same_to_the_byte_and_have_a_dark_twin() -> None:
