@@ -129,13 +129,17 @@ _CAPACITIES = {
 }  # fmt: skip
 
 
+def _small(label: str) -> str:
+    return label[:1].lower() + label[1:]
+
+
 def _promised(data: SystemData, display: Display) -> str | None:
     """The capacity that the contract promises, with its condition, as nameplate and certificate have it."""
     found = next((g for g in data.system.guarantee if g.quantity in _CAPACITIES), None)
     if found is None:
         return None
     at = [
-        f"{display.short(key)} {display.of(key, value)}"
+        f"{_small(display.short(key))} {display.of(key, value)}"
         for key in ("heat_source_inlet_temperature", "heat_sink_inlet_temperature", "heat_sink_outlet_temperature")
         if (value := getattr(found.at, key)) is not None
     ]
