@@ -29,10 +29,14 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
     Phases are shown one by one, and what the person remarked beside the value is kept with its place.
     """
     number = any(c.isdigit() for c in r.written[:2])
-    written = r.written if number or key not in NOMENCLATURE else f"{display.of(key, r.value)}, {r.written}"
+    written = (
+        r.written
+        if number or key not in NOMENCLATURE
+        else f"{display.measured(key, r.value, r.uncertainty)}, {r.written}"
+    )
     said = by_hand.get(key)
     if said is not None and said.phases:
-        written = f"{', '.join(said.phases)}; mean {display.of(key, r.value)}"
+        written = f"{', '.join(said.phases)}; mean {display.measured(key, r.value, r.uncertainty)}"
     return {
         "label": display.label(key),
         "written": written,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
 from typing import Self
@@ -40,6 +41,10 @@ _SHOWN: dict[Kind, tuple[tuple[str, int], tuple[str, int]]] = {
 
 JSON_UNIT: dict[Kind, str] = {Kind.TEMPERATURE: "°C", Kind.PRESSURE: "Pa"}
 """Units of `--json` where they are not the SI unit of the kind: °C, and Pa absolute."""
+
+
+MOST_MORE = 2
+"""Digits that a reading may have beyond the usual ones of its kind."""
 
 
 def _unit(name: str, kind: Kind) -> Unit:
@@ -159,6 +164,17 @@ class Display:
     def of(self, key: str, value: float) -> str:
         """Number and unit of a quantity of the nomenclature."""
         return self.text(value, self.quantities[key].kind)
+
+    def measured(self, key: str, value: float, uncertainty: float | None) -> str:
+        """Number and unit of a reading, with the digits that its standard uncertainty (SI) has a say in, so that what
+        follows from it can be worked out again (JCGM 100, 7.2.6)."""
+        kind = self.quantities[key].kind
+        shown = self.fitting(kind, value)
+        usual = shown._places(kind, shown.convert(value, kind))
+        if not uncertainty or kind is Kind.NUMBER:
+            return shown.of(key, value)
+        size = uncertainty / _unit(shown.unit_and_digits(kind)[0], kind).factor
+        return shown.text(value, kind, min(max(usual, -math.floor(math.log10(size))), usual + MOST_MORE))
 
     def label(self, key: str) -> str:
         """What a quantity of the nomenclature is called here, as the head of a line."""

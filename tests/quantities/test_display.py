@@ -183,3 +183,14 @@ def test_what_stands_together_is_shown_in_one_unit() -> None:
     assert own.text(2300.0, Kind.POWER) == "2300 W"
     assert display.number(110.0, Kind.POWER) == "0.11"
     assert Display("us_customary", BAROMETER).text(40.0, Kind.PRESSURE_DIFFERENCE) == "0.16 in w.g."
+
+
+def test_a_reading_keeps_the_digits_that_its_uncertainty_has_a_say_in() -> None:
+    """JCGM 100, 7.2.6: 34.814 °C with a standard uncertainty of 0.02 K is shown to 0.01, with 0.13 K to 0.1; a reading
+    whose uncertainty nobody knows as usual, a gauge counted from the air."""
+    shown = Display("metric", 97650.0)
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.02) == "34.81 °C"
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.13) == "34.8 °C"
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, None) == "34.8 °C"
+    assert shown.measured("heating_capacity", 10041.2, 4.0) == "10.041 kW"
+    assert shown.measured("suction_pressure", 400000.0, 3000.0) == "3.02 bar g"
