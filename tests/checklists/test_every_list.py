@@ -196,8 +196,8 @@ def test_nobody_opens_a_cylinder_bare_handed(listed: tuple[Item, ...]) -> None:
 
 
 def test_liquid_is_let_in_once_and_never_onto_still_water(listed: tuple[Item, ...], substance: Substance) -> None:
-    """An exchanger with a liquid in it, on either side, sees vapour alone until the refrigerant boils above its freezing
-    point; once only stands a start of liquid on a list (common practice)."""
+    """An exchanger with a liquid in it, on either side, sees vapour alone until the refrigerant boils above its
+    freezing point; once only stands a start of liquid on a list (common practice)."""
     order = ids(listed)
     if "flows.flushed" not in order or "charging.weigh" not in order:
         return
@@ -222,6 +222,67 @@ def test_nobody_charges_alone_in_a_room_that_can_fill(listed: tuple[Item, ...]) 
     if "installation.ventilation" in order and "charging.weigh" in order:
         assert not after(listed, "charging.air", LETS_IN)
         assert not after(listed, "charging.two-people", LETS_IN)
+
+
+KEEPS_PEOPLE_WHOLE = re.compile(r"EN 378-[134]|EN 14624|ISO 13850|HSG274|EN 13136|EN 12828|EN 1490")
+"""Documents about relief, gas in rooms, stops, legionella."""
+
+
+def test_a_proof_that_fails_before_the_first_start_has_a_consequence(listed: tuple[Item, ...]) -> None:
+    """What can hurt says what is not done while it fails: hazards, safety devices, and what keeps gas from people."""
+    start = next(n for n, item in enumerate(listed) if item.id.startswith("first-start."))
+    for item in listed[:start]:
+        hurts = item.id.startswith(("safety.", "charging.")) or KEEPS_PEOPLE_WHOLE.search(item.source)
+        if item.hazard or (hurts and item.must_read):
+            assert item.if_not, item.id
+
+
+IN_A_ROOM_THAT_FILLS = (
+    "readiness.toxic-plan",
+    "installation.doors",
+    "installation.signs",
+    "installation.fan-outlet",
+    "installation.ventilation",
+    "safety.room-detector",
+    "safety.detector-fan",
+    "safety.door-switch",
+    "safety.horn",
+    "charging.air",
+    "charging.two-people",
+)
+"""What proves that a person is warned at the door, and comes out again."""
+
+
+def test_a_machinery_room_is_proved_whatever_its_refrigerant(listed: tuple[Item, ...], place: tuple[Path, str]) -> None:
+    """Below ground or with a detector: ammonia is smelt, carbon dioxide and R-134a are not (EN 378-3)."""
+    indoors = place[1] in ("chiller", "water-heater", "tower-chiller")
+    assert set(IN_A_ROOM_THAT_FILLS) & set(ids(listed)) <= (
+        {"safety.room-detector"} if not indoors else set(ids(listed))
+    )
+    if indoors:
+        assert set(IN_A_ROOM_THAT_FILLS) <= set(ids(listed))
+        assert not after(listed, IN_A_ROOM_THAT_FILLS[0], LETS_IN)
+        assert not [name for proof in IN_A_ROOM_THAT_FILLS for name in after(listed, proof, LETS_IN)]
+
+
+def test_a_stop_leaves_the_fan_running_and_no_proof_can_start_a_machine(listed: tuple[Item, ...]) -> None:
+    """An emergency stop that stops the emergency fan fills the room (EN 378-3); a proof that fails must not be the
+    first start, so the compressor is isolated (common practice)."""
+    for item in listed:
+        if item.id == "safety.stop-button":
+            assert item.must_read is not None
+            assert "emergency fan, detection and light go on" in item.must_read.text
+        if item.id in ("safety.interlock", "safety.freeze", "safety.stop-button", "safety.oil-pressure"):
+            assert "ompressor isolated" in f"{item.do} {item.how}", item.id
+
+
+def test_a_tower_is_clean_before_it_sprays(listed: tuple[Item, ...]) -> None:
+    """Cleaned, disinfected, with drift eliminators and dosing, before a pump or fan of it runs (HSG274, VDI 2047)."""
+    order = ids(listed)
+    if "flows.tower-hygiene" in order:
+        assert not after(listed, "flows.tower-clean", ("electrical.pumps", "flows.sink-flow", "flows.tower-fan"))
+        assert "handover.tower-legionella" in order
+        assert "ocked off" in (item_of(listed, "flows.tower-fan").hazard or "")
 
 
 def test_nobody_stands_by_while_refrigerant_is_let_in(listed: tuple[Item, ...]) -> None:

@@ -120,6 +120,7 @@ BEFORE = [
     ("electrical.report", "charging.weigh"),
     ("charging.keep-away", "charging.cylinder"),
     ("electrical.report", "safety.release"),
+    ("safety.trapped-alarm", "safety.release"),
     ("safety.release", "installation.room-ignition"),
     ("safety.relief-setting", "charging.cylinder"),
     ("safety.relief-settings", "charging.cylinder"),
