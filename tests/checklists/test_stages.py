@@ -202,6 +202,8 @@ def test_the_plants_own_register_figures_are_used(example_copy: Path) -> None:
     """A flammability limit that the plant states replaces the register's in figures and items, with its source."""
     path = example_copy / "plant.yaml"
     before = safety_figures(load_plant(example_copy), "cold-room").found["flammable_alarm_level"]
+    assert "no setting" in before.note
+    assert "might never alarm" in before.note, "0.45 kg in 67 m³ is 6.7 g/m³, below a quarter of what can burn"
     own = "\nrefrigerants: {R-290: {lfl: {value: 0.030 kg/m3, source: a later edition}}}\n"
     path.write_text(path.read_text(encoding="utf-8") + own, encoding="utf-8")
     loaded = load_plant(example_copy)

@@ -235,7 +235,7 @@ def test_a_store_that_stays_lukewarm_below_its_element(facts: Facts) -> None:
 
     (remark,) = judge("store middle", "replaces")
     assert remark.severity == "warning"
-    assert figure(remark, "volume of the store").text == "300.0 L"
+    assert figure(remark, "volume of the store").text == "300 L"
     assert not judge("store bottom", "replaces")
     assert not judge("store middle", "helps")
 
