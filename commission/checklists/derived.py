@@ -6,7 +6,7 @@ from collections.abc import Callable, Mapping
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
-from commission.safety import charge_limits, fluid_of, rated_capacity, relief_valves
+from commission.safety import charge_limits, fact, fluid_of, rated_capacity, relief_valves
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
@@ -184,6 +184,24 @@ def _guarded(facts: Facts) -> bool:
     return space is not None and not space.outdoors and bool(space.below_ground or space.leak_detector)
 
 
+def _ventilation(facts: Facts) -> float | None:
+    """What the emergency ventilation must move, m³/s: what it was designed for where that is more than the rule."""
+    rule = facts.figures.get("emergency_ventilation")
+    space = facts.space("condensing_unit")
+    designed = None if space is None else space.ventilation
+    found = [flow for flow in (None if rule is None else rule.value, designed) if flow is not None]
+    return max(found, default=None)
+
+
+def _return_least(facts: Facts) -> float:
+    """The coldest that hot water may come back from its loop, K: as stated where that is warmer than 50 °C."""
+    store = facts.system.store
+    loop = None if store is None else store.circulation
+    stated = None if loop is None else loop.return_temperature
+    least = float(fact("hot_water_circulation").value)
+    return least if stated is None else max(stated, least)
+
+
 DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
     {
         "fluid.name": lambda f, _: f.substance.name,
@@ -230,6 +248,10 @@ DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "unit.charged": lambda f, _: _charged(f),
         "unit.extra_charge": lambda f, _: _extra_charge(f),
         "drive.three_phase": lambda f, _: _three_phase(f),
+        "back_up.power": lambda f, _: f.system.back_up.power if f.system.back_up is not None else None,
+        "motor.outside": lambda f, _: f.system.compressor.build == "open",
+        "ventilation.least": lambda f, _: _ventilation(f),
+        "water.return_least": lambda f, _: _return_least(f),
         "rotation.matters": lambda f, _: _rotation(f),
     }
 )

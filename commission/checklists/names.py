@@ -71,6 +71,10 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "unit.charged": ("yes/no", "the unit comes with refrigerant in it: sealed, or behind shut service valves", ()),
         "unit.extra_charge": (Kind.MASS, "refrigerant added on site to what comes in the unit (factory_charge)", ()),
         "drive.three_phase": ("yes/no", "three supply phases", ()),
+        "back_up.power": (Kind.POWER, "power that the back-up heat takes, an element all of it as heat", ()),
+        "motor.outside": ("yes/no", "an open compressor: its motor stands outside the refrigerant", ()),
+        "ventilation.least": (Kind.VOLUME_FLOW, "air flow that the emergency ventilation must reach, as designed", ()),
+        "water.return_least": (Kind.TEMPERATURE, "coldest that hot water may come back from its loop", ()),
         "rotation.matters": (
             "yes/no",
             "a compressor that turning backwards harms: scroll, screw or rotary, on three phases",
@@ -120,6 +124,7 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "words.flow_stages": ("text", "air flow of each stage of the fan", ()),
         "words.levels": ("text", "levels in the air that matter to people", ()),
         "words.highest_discharge": ("text", "highest discharge temperature by common practice", ()),
+        "words.heat_up": ("text", "heat and time that the store takes from cold", ()),
         "words.reset": ("text", "what the compressor does after its high-pressure limit device has acted", ()),
         "words.relief_valves": ("text", "set pressure of each relief valve, by where it sits", ()),
         "words.power_counts": ("text", "what the rated power input counts", ()),

@@ -62,7 +62,35 @@ def _acts_first(facts: Facts) -> str | None:
         found.append(f"the discharge limiter at {display.text(hot, Kind.TEMPERATURE)}")
     if least is not None and system.heat_sink.medium != "air":
         found.append(f"the flow switch at {display.of('heat_sink_flow', least)}")
+    ceiling, limit = _ceiling(facts), system.controls.high_pressure_limit
+    if ceiling is not None and (limit is None or ceiling < facts.loaded.absolute(limit)):
+        shown = display.text(ceiling, Kind.PRESSURE)
+        found.append(f"the controller, whose valve opens at its own ceiling of {shown} and holds the pressure there")
     return " or ".join(found) or None
+
+
+def _ceiling(facts: Facts) -> float | None:
+    """The highest pressure that the control of a gas cooler allows, Pa absolute."""
+    control = facts.system.controls.gas_cooler_pressure
+    return None if control is None or control.highest is None else facts.loaded.absolute(control.highest)
+
+
+WATER = 4.18e6
+"""Heat capacity of a cubic metre of water between 10 and 60 °C, J/(m³ K), within 1 % (steam tables, from memory)."""
+
+
+def _heat_up(facts: Facts) -> str | None:
+    """Heat to the store from cold to its set point, and the time at the expected heating capacity."""
+    store, prediction = facts.system.store, facts.predictions.get("expected")
+    cold = None if store is None else store.cold_water
+    if store is None or cold is None or store.set_point is None:
+        return None
+    heat = WATER * store.volume * (store.set_point - cold)
+    text = f"about {heat / 3.6e6:.0f} kWh of heat from {facts.display.text(cold, Kind.TEMPERATURE)}"
+    capacity = None if prediction is None else prediction.expected.get("heating_capacity")
+    if capacity is None:
+        return text
+    return f"{text}, {heat / capacity.value / 3600:.1f} h at the heating capacity expected at this condition"
 
 
 def _flow_stages(facts: Facts) -> str | None:
@@ -72,12 +100,13 @@ def _flow_stages(facts: Facts) -> str | None:
 
 def _highest_discharge(facts: Facts) -> str | None:
     """The highest discharge temperature: of common practice for ammonia and some oils, else the plant's own limiter."""
-    if facts.substance.components == ("R-717",):
-        return "reciprocating ammonia compressors stay below 120 to 140 °C, oil-flooded screws at 80 to 90 °C"
     oil = oil_named(facts.system.compressor.oil)
     limiter = facts.system.controls.discharge_temperature_limit
-    stops = None if limiter is None else f"the limiter stops it at {facts.display.text(limiter, Kind.TEMPERATURE)}"
-    kept = None if oil is None or oil.discharge is None else f"with {oil.family} oil never above {oil.discharge}"
+    shown = None if limiter is None else facts.display.text(limiter, Kind.TEMPERATURE)
+    kept = None if oil is None or oil.discharge is None else f"for {oil.family} oil kept below {oil.discharge}"
+    if facts.substance.components == ("R-717",):
+        kept = "reciprocating ammonia compressors are kept below 120 to 140 °C, oil-flooded screws at 80 to 90 °C"
+    stops = None if shown is None else f"{'only ' if kept else ''}at {shown} the limiter stops it"
     return "; ".join(part for part in (kept, stops) if part) or None
 
 
@@ -249,6 +278,7 @@ PHRASES: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "words.held_off_superheat": _held_off,
         "words.held_off_discharge_pressure": _held_off,
         "words.records": lambda f, _: _records(f),
+        "words.heat_up": lambda f, _: _heat_up(f),
         "words.reset": lambda f, _: _reset(f),
         "words.relief_valves": lambda f, _: _relief_valves(f),
         "words.power_counts": lambda f, _: _power_counts(f),
