@@ -152,8 +152,11 @@ def test_a_sealed_unit_has_no_words_of_an_open_circuit(tmp_path: Path) -> None:
 def test_superheat_has_one_lower_bound(plant: LoadedPlant) -> None:
     """What the valve holds less its margin, and the band at the compressor; no other figure stands beside them."""
     for system_id in ("cold-room", "freezer-room", "dining-hall", "shower-water"):
-        for key in ("trim.superheat", "trim.compressor-superheat"):
-            item = fitted(plant, system_id)[key]
+        found = fitted(plant, system_id)
+        # the valve of an air conditioner that came charged is set by its own controller, and no gauge reads beside it
+        assert ("trim.superheat" in found) is (system_id != "dining-hall")
+        for key in {"trim.superheat", "trim.compressor-superheat"} & set(found):
+            item = found[key]
             assert item.must_read is not None
             assert item.must_read.low is not None
             assert "never below" not in item.must_read.text
