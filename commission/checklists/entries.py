@@ -21,7 +21,9 @@ class MustRead(Entry):
 
     value: str | None = Field(None, description="what it should be, an expression")
     within: str | None = Field(
-        None, description="margin on both sides, a quantity or a share in %, or 'band' for the expected band"
+        None,
+        description="margin on both sides: a quantity, a share in %, 'band' for the expected band, or 'band as read' "
+        "for that with the tolerance of rated figures and the error of the instrument",
     )
     at_least: str | None = Field(None, description="lower bound, an expression or quantity")
     at_most: str | None = Field(None, description="upper bound, an expression or quantity")

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from commission.checklists.bands import AS_READ, as_read
 from commission.checklists.evaluate import evaluate, parse_literal
 from commission.checklists.language import Expression, Value
 from commission.checklists.templates import Template
@@ -21,6 +22,8 @@ MICRON = 0.133322387415
 STATED_NOWHERE = "not stated"
 COVERAGE = 2.0
 """Coverage factor of the band of an expected value, about 95 %."""
+BANDS = ("band", AS_READ)
+"""Margins that are the band of an expected value: of the calculation alone, or with rated figures and instrument."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -110,16 +113,21 @@ def target(item: CheckedItem, says: str | None, facts: Facts) -> Target | None:
         text = missing if missing.startswith(STATED_NOWHERE) else f"not calculated: {missing}"
         return Target(f"{text}; {says}" if says else text, kind=kind, missing=missing, explained=explained)
     numbers = {key: float(v.content) for key, v in worked.items() if isinstance(v.content, float)}
-    if within == "band":
+    if within in BANDS:
         numbers = as_far_as_can_be(numbers, explained)
     margin = _margin(numbers.get("value"), within if isinstance(within, str) else None, kind, explained)
-    readable = _readable(item, numbers.get("value"), facts) if margin is not None and within != "band" else None
+    held = None
+    if within == AS_READ and margin is not None and item.entry.quantity is not None:
+        margin, held = as_read(facts, item.entry.quantity, numbers["value"], margin / COVERAGE)
+    readable = _readable(item, numbers.get("value"), facts) if margin is not None and within not in BANDS else None
     finest = readable is not None and margin is not None and readable[1] > margin
     value, low, high = _range(numbers, readable[1] if finest and readable else margin)
     text = _range_text(value, low, high, kind, facts.display)
     if finest and readable:
         text += f" (no closer than {readable[0]} can read)"
-    if within == "band" and low is not None and "expected." in _text_of(item):
+    if held:
+        text += f", {held}"
+    if within in BANDS and low is not None and "expected." in _text_of(item):
         text += f", expected at {facts.lookup('words.condition').content}"
     shown = "; ".join(part for part in (text, says) if part)
     return Target(shown, value, low, high, kind, None, explained)
@@ -154,7 +162,7 @@ def _margin(value: float | None, within: str | None, kind: Kind, explained: tupl
     """The margin on both sides of a value in SI: stated, a share of it, or the band of the expected value."""
     if value is None or within is None:
         return None
-    if within == "band":
+    if within in BANDS:
         spread = next((e.uncertainty for e in explained if e.value == value and e.uncertainty is not None), None)
         return None if spread is None else COVERAGE * spread
     if within.strip().endswith("%") and kind is not Kind.RATIO:

@@ -62,8 +62,8 @@ def test_expected_readings_carry_their_band_and_condition(example_folder: Path) 
     """The band is twice the standard uncertainty of the prediction, at the condition that is named."""
     loaded = load_plant(example_folder)
     model = fit(loaded, "cold-room")
-    item = items(stages(loaded, "cold-room", model))["performance.discharge-pressure"]
-    explained = model.predict().expected["discharge_pressure"]
+    item = items(stages(loaded, "cold-room", model))["trim.compressor-superheat"]
+    explained = model.predict().expected["compressor_superheat"]
     assert item.must_read is not None
     assert explained.uncertainty is not None
     assert item.must_read.value == pytest.approx(explained.value)
