@@ -43,6 +43,7 @@ LAST_DAYS = {
     "horn": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "leak-into-liquid": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "back-up-power": ("2025-02-28", "EN 50172 (yearly), from memory"),
+    "factory-devices": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "relief-look": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "relief-renewal": ("2029-02-28", "Real Decreto 552/2019, IF-08: 5 years, read"),
     "heating-relief": ("2025-02-28", "common practice, no source"),
