@@ -286,6 +286,7 @@ def test_a_tower_is_clean_before_it_sprays(listed: tuple[Item, ...]) -> None:
 
 
 AGAIN = {
+    "readiness.factory-test": "upkeep.factory-devices",
     "safety.release": "upkeep.release",
     "safety.trapped-alarm": "upkeep.release",
     "safety.high-pressure": "upkeep.high-pressure",
@@ -338,6 +339,35 @@ def test_each_safety_device_is_proved_again(listed: tuple[Item, ...]) -> None:
     assert {name for name in order if name.startswith("safety.")} <= set(AGAIN) | NOT_AGAIN
     for once, again in AGAIN.items():
         assert again in order or once not in order, (once, again)
+
+
+def test_water_under_pressure_is_let_off_and_read_against_the_plates(listed: tuple[Item, ...]) -> None:
+    """Strainers of hot water are opened cold and without pressure; relief valves of water are no higher than what they
+    protect, and vessels have their gas before the water is heated (EN 12828, EN 1490; common practice)."""
+    order = ids(listed)
+    hot = "flows.water-pressure" in order or "flows.outlets-shut" in order
+    for item in listed:
+        if item.id == "upkeep.strainers":
+            assert "pressure let off" in (item.caution or "")
+            assert ("hot" in (item.hazard or "")) is hot
+        if item.id in ("flows.water-pressure", "installation.unvented"):
+            assert item.must_read is not None
+            assert "no higher than" in item.must_read.text
+            assert item.if_not
+            assert not after(listed, "flows.expansion-vessel", RUNNING_FIRST)
+
+
+RUNNING_FIRST = ("electrical.pumps", "flows.sink-flow", "first-start.current")
+
+
+def test_a_coupling_runs_behind_its_guard(listed: tuple[Item, ...]) -> None:
+    """Whoever takes the guard off is asked for it again (EN ISO 14120)."""
+    for item in listed:
+        if item.id in ("installation.alignment", "trim.coupling-warm"):
+            assert item.must_read is not None
+            assert "the guard is back on" in item.must_read.text
+        if item.id == "electrical.uncoupled":
+            assert "guard" in (item.hazard or "")
 
 
 def test_nobody_stands_by_while_refrigerant_is_let_in(listed: tuple[Item, ...]) -> None:
