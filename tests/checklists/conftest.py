@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from functools import cache
 from pathlib import Path
 
 import pytest
 
-from commission.checklists import Stage, stages
+from commission.checklists import Item, Stage, stages
 from commission.description import LoadedPlant, load_plant
+from commission.safety import Substance, fluid_of, substance_of
 
 YARD = Path(__file__).parent / "plants" / "yard"
 DAIRY = Path(__file__).parent / "plants" / "dairy"
@@ -55,3 +56,58 @@ def fitted_stages(loaded: LoadedPlant, system_id: str) -> tuple[Stage, ...]:
     from commission.prediction import fit
 
     return stages(loaded, system_id, fit(loaded, system_id))
+
+
+LISTS = (
+    *(("example", name) for name in ("cold-room", "dining-hall", "floor-heating", "freezer-room", "shower-water")),
+    *(("yard", name) for name in SYSTEMS),
+    ("dairy", "propane-room"),
+)
+
+
+@cache
+def every_list(folder: Path, system_id: str) -> tuple[Item, ...]:
+    """The items of one system in their order."""
+    return tuple(item for stage in stages(load_plant(folder), system_id) for item in stage.items)
+
+
+@pytest.fixture(params=LISTS, ids=lambda pair: pair[1])
+def place(request: pytest.FixtureRequest, example_folder: Path) -> tuple[Path, str]:
+    """The folder and the id of one system."""
+    folder, system_id = request.param
+    return {"example": example_folder, "yard": YARD, "dairy": DAIRY}[folder], system_id
+
+
+@pytest.fixture
+def listed(place: tuple[Path, str]) -> tuple[Item, ...]:
+    """The items of one system in their order."""
+    return every_list(*place)
+
+
+@pytest.fixture
+def loaded(place: tuple[Path, str]) -> LoadedPlant:
+    """The plant of that system."""
+    return load_plant(place[0])
+
+
+@pytest.fixture
+def substance(loaded: LoadedPlant, place: tuple[Path, str]) -> Substance:
+    """The refrigerant of that system."""
+    return substance_of(fluid_of(loaded, place[1]))
+
+
+def ids(listed: tuple[Item, ...]) -> list[str]:
+    """The ids of a list in their order."""
+    return [item.id for item in listed]
+
+
+def item_of(listed: tuple[Item, ...], name: str) -> Item:
+    """The item of an id."""
+    return next(item for item in listed if item.id == name)
+
+
+def after(listed: tuple[Item, ...], first: str, later: Iterable[str]) -> list[str]:
+    """Those of `later` that stand on a list, but not behind `first`."""
+    order = ids(listed)
+    start = order.index(first) if first in order else len(order)
+    return [name for name in later if name in order and order.index(name) < start]
