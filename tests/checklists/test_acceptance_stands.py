@@ -7,9 +7,7 @@ from pathlib import Path
 import pytest
 
 from commission.checklists import Item
-from tests.checklists.test_every_list import after, ids, item_of, listed, place
-
-__all__ = ["listed", "place"]  # fixtures, for the tests below
+from tests.checklists.conftest import after, ids, item_of
 
 CHILLERS = ("chiller", "tower-chiller")
 
@@ -82,3 +80,13 @@ def test_ventilation_is_judged_as_designed(listed: tuple[Item, ...], place: tupl
         target = item_of(listed, "installation.ventilation").must_read
         assert target is not None
         assert target.low == pytest.approx(1.0)
+
+
+def test_the_name_on_the_cylinder_is_read_before_anything_leaves_it(listed: tuple[Item, ...]) -> None:
+    """Vapour that breaks the vacuum is refrigerant too; where it is weighed in at once, the words stand there."""
+    order = ids(listed)
+    vapour = {"charging.water-flows", "charging.vapour-first", "charging.first-vapour"} & set(order)
+    assert not vapour or "charging.cylinder" in order
+    assert not after(listed, "charging.cylinder", (*vapour, "charging.weigh")) or "charging.cylinder" not in order
+    if "charging.weigh" in order and "charging.cylinder" not in order:
+        assert "The name on the cylinder is" in (item_of(listed, "charging.weigh").how or "")
