@@ -85,7 +85,7 @@ def test_ventilation_is_judged_as_designed(listed: tuple[Item, ...], place: tupl
 def test_the_name_on_the_cylinder_is_read_before_anything_leaves_it(listed: tuple[Item, ...]) -> None:
     """Vapour that breaks the vacuum is refrigerant too; where it is weighed in at once, the words stand there."""
     order = ids(listed)
-    vapour = {"charging.water-flows", "charging.vapour-first", "charging.first-vapour"} & set(order)
+    vapour = {"charging.vapour-first", "charging.first-vapour"} & set(order)
     assert not vapour or "charging.cylinder" in order
     assert not after(listed, "charging.cylinder", (*vapour, "charging.weigh")) or "charging.cylinder" not in order
     if "charging.weigh" in order and "charging.cylinder" not in order:
