@@ -22,6 +22,7 @@ from commission.safety import (
 
 if TYPE_CHECKING:
     from commission.checklists.words import Facts
+    from commission.prediction import Prediction
 
 
 def _levels(facts: Facts) -> str | None:
@@ -230,7 +231,21 @@ def _held_off(facts: Facts, name: str) -> str | None:
     """Why the expected value of a setting is not the stated one: `held_off_superheat` asks for that of superheat."""
     prediction = facts.predictions.get("expected")
     found = prediction.held_off if prediction is not None else ()
-    return next((one.words(facts.display) for one in found if one.quantity == name.removeprefix("held_off_")), None)
+    said = next((one.words(facts.display) for one in found if one.quantity == name.removeprefix("held_off_")), None)
+    return _too_little_load(facts, prediction) if said is None and name == "held_off_superheat" else said
+
+
+def _too_little_load(facts: Facts, prediction: Prediction | None) -> str | None:
+    """Why less superheat is expected than the valve is set to: the coil has no more to give at this condition."""
+    expansion = facts.system.expansion
+    stated = None if expansion is None else expansion.superheat
+    expected = None if prediction is None else prediction.expected.get("superheat")
+    if stated is None or expected is None or expected.value >= stated:
+        return None
+    setting, given = (facts.display.text(v, Kind.TEMPERATURE_DIFFERENCE) for v in (stated, expected.value))
+    if setting == given:
+        return None
+    return f"superheat is set to {setting}; at this condition the evaporator gives {given}; the setting stays as it is"
 
 
 REST_AT = (283.15, 293.15, 303.15)

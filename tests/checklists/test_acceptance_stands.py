@@ -6,7 +6,9 @@ from pathlib import Path
 
 import pytest
 
-from commission.checklists import Item
+from commission.checklists import Item, stages
+from commission.description import load_plant
+from commission.prediction import fit
 from tests.checklists.conftest import after, ids, item_of
 
 CHILLERS = ("chiller", "tower-chiller")
@@ -90,3 +92,14 @@ def test_the_name_on_the_cylinder_is_read_before_anything_leaves_it(listed: tupl
     assert not after(listed, "charging.cylinder", (*vapour, "charging.weigh")) or "charging.cylinder" not in order
     if "charging.weigh" in order and "charging.cylinder" not in order:
         assert "The name on the cylinder is" in (item_of(listed, "charging.weigh").how or "")
+
+
+def test_a_superheat_below_its_setting_says_why(example_folder: Path) -> None:
+    """4.5 K are set in the freezer room and 4.3 K expected; 6.0 K are set and expected in the cold room."""
+    plant = load_plant(example_folder)
+    how = {}
+    for name in ("freezer-room", "cold-room"):
+        found = [item for stage in stages(plant, name, fit(plant, name)) for item in stage.items]
+        how[name] = next(item.how or "" for item in found if item.id == "trim.superheat")
+    assert "superheat is set to 4.5 K; at this condition the evaporator gives 4.3 K" in how["freezer-room"]
+    assert "is set to" not in how["cold-room"]
