@@ -36,7 +36,7 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
     )
     said = by_hand.get(key)
     if said is not None and said.phases:
-        written = f"{', '.join(said.phases)}; mean {display.measured(key, r.value, r.uncertainty)}"
+        written = f"{', '.join(said.phases)}; mean {shown}"
     return {
         "label": display.label(key),
         "written": written,
