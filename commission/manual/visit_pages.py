@@ -29,11 +29,8 @@ def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str,
     Phases are shown one by one, and what the person remarked beside the value is kept with its place.
     """
     number = any(c.isdigit() for c in r.written[:2])
-    written = (
-        r.written
-        if number or key not in NOMENCLATURE
-        else f"{display.measured(key, r.value, r.uncertainty)}, {r.written}"
-    )
+    shown = display.measured(key, r.value, r.uncertainty) if key in NOMENCLATURE else ""
+    written = r.written if number or not shown else f"{shown}, {r.written}"
     said = by_hand.get(key)
     if said is not None and said.phases:
         written = f"{', '.join(said.phases)}; mean {shown}"
