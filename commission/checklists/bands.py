@@ -33,7 +33,7 @@ _ROOT_3 = math.sqrt(3.0)
 
 
 def as_read(facts: Facts, key: str, value: float, calculated: float) -> tuple[float, str]:
-    """The margin of a reading on both sides of its expected value (95 %), in SI, and what is in it, in words.
+    """The margin of a reading on both sides of its expected value (k = 2, as all bands), in SI, and what is in it.
 
     `calculated` is the standard uncertainty of the expected value. Tolerances of rated figures are rectangular, as
     largest permissible errors are (JCGM 100, 4.3.7).
@@ -51,7 +51,7 @@ def as_read(facts: Facts, key: str, value: float, calculated: float) -> tuple[fl
     if meter is not None:
         budgets.append(meter[0])
         words.append(meter[1])
-    return combine(*budgets).expanded(), f"with the errors of {', '.join(words[:-1])} and {words[-1]}"
+    return 2.0 * combine(*budgets).standard, f"with the errors of {', '.join(words[:-1])} and {words[-1]}"
 
 
 def _meter(facts: Facts, key: str, value: float) -> tuple[Budget, str] | None:

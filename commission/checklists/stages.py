@@ -200,7 +200,7 @@ def render(item: CheckedItem, note: str | None, facts: Facts) -> Item:
         caution=texts.get("caution"),
         who=texts.get("who"),
         quantity=entry.quantity,
-        unit=_unit(item, facts),
+        unit=_unit(item, facts, reading),
         reading=entry.must_read is not None and entry.must_read.value == f"expected.{entry.quantity}",
         rest_at=entry.must_read.rest_at if entry.must_read else None,
         as_answered=entry.must_read.as_answered if entry.must_read else None,
@@ -223,12 +223,16 @@ def _mark_of(source: str) -> str:
     return "stated" if source.startswith(STATED) else "M"
 
 
-def _unit(item: CheckedItem, facts: Facts) -> str | None:
-    from commission.quantities import pretty
+def _unit(item: CheckedItem, facts: Facts, reading: Target | None) -> str | None:
+    """The unit of an answer; a flow is asked in the unit in which it must read, or L/h would be read as m³/h."""
+    from commission.quantities import FLOWS, pretty
 
     entry = item.entry
     if entry.answer != "value":
         return None
+    sizes = () if reading is None else tuple(x for x in (reading.value, reading.low, reading.high) if x is not None)
+    if sizes and reading is not None and reading.kind in FLOWS:
+        return pretty(facts.display.fitting(reading.kind, *sizes).unit_and_digits(reading.kind)[0])
     if entry.unit is not None:
         return pretty(_unit_as_shown(entry.unit, facts.display))
     assert entry.quantity is not None

@@ -23,13 +23,17 @@ if TYPE_CHECKING:
     from commission.records.model import Answer, Measured
 
 
-def _reading(display: Display, key: str, r: FrozenReading, by_hand: Mapping[str, Measured]) -> dict[str, str]:
+def _reading(
+    plant: PlantData, display: Display, key: str, r: FrozenReading, by_hand: Mapping[str, Measured]
+) -> dict[str, str]:
     """A reading as it was written; where only its origin was (`mean of 5 samples`), the number stands before it.
 
     Phases are shown one by one, and what the person remarked beside the value is kept with its place.
     """
     number = any(c.isdigit() for c in r.written[:2])
-    shown = display.measured(key, r.value, r.uncertainty) if key in NOMENCLATURE else ""
+    instrument = plant.loaded.plant.instruments.get(r.instrument or "")
+    step = instrument.resolved.resolution if instrument is not None else None
+    shown = display.measured(key, r.value, step) if key in NOMENCLATURE else ""
     written = r.written if number or not shown else f"{shown}, {r.written}"
     said = by_hand.get(key)
     if said is not None and said.phases:
@@ -166,16 +170,18 @@ def _shared(plant: PlantData, data: SystemData, record: FiledRecord, archive: Ar
     display = page_display(plant.loaded, data.id, record.filed.barometric_pressure)
     filed, file = record.filed, record.file
     results = results_among(data, filed.conditions)
+
+    def read(key: str, frozen: FrozenReading) -> dict[str, str]:
+        return _reading(plant, display, key, frozen, file.conditions)
+
     return {
         "record": record,
         "when": when(record),
         "name": title_of(record),
         "look": VERDICT_CLASS[record.verdict],
         "people": [(role, p) for role, p in file.people.items()],
-        "conditions": [
-            _reading(display, k, r, file.conditions) for k, r in filed.conditions.items() if k not in results
-        ],
-        "results": [_reading(display, k, r, file.conditions) for k, r in filed.conditions.items() if k in results],
+        "conditions": [read(k, r) for k, r in filed.conditions.items() if k not in results],
+        "results": [read(k, r) for k, r in filed.conditions.items() if k in results],
         "air": f"{filed.barometric_pressure / 100:.0f} hPa"
         + ("" if filed.barometer_measured else ", not measured: from the altitude"),
         "guarantees": [_guarantee(display, g) for g in filed.guarantees],
@@ -250,7 +256,7 @@ def record_page(plant: PlantData, data: SystemData, record: FiledRecord, archive
     written = {k: r.written for k, r in filed.readings.items()}
     judged = [_deviation(display, k, d, written.get(k, "")) for k, d in filed.deviations.items()]
     by_hand = record.file.readings
-    alone = [_reading(display, k, r, by_hand) for k, r in filed.readings.items() if k not in filed.deviations]
+    alone = [_reading(plant, display, k, r, by_hand) for k, r in filed.readings.items() if k not in filed.deviations]
     corrected = archive.corrected.get(record.id)
     context = {
         **_shared(plant, data, record, archive),

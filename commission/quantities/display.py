@@ -43,10 +43,6 @@ JSON_UNIT: dict[Kind, str] = {Kind.TEMPERATURE: "°C", Kind.PRESSURE: "Pa"}
 """Units of `--json` where they are not the SI unit of the kind: °C, and Pa absolute."""
 
 
-MOST_MORE = 2
-"""Digits that a reading may have beyond the usual ones of its kind."""
-
-
 def _unit(name: str, kind: Kind) -> Unit:
     unit = find_unit(name, kind)
     if unit is None:
@@ -165,16 +161,14 @@ class Display:
         """Number and unit of a quantity of the nomenclature."""
         return self.text(value, self.quantities[key].kind)
 
-    def measured(self, key: str, value: float, uncertainty: float | None) -> str:
-        """Number and unit of a reading, with the digits that its standard uncertainty (SI) has a say in, so that what
-        follows from it can be worked out again (JCGM 100, 7.2.6)."""
+    def measured(self, key: str, value: float, step: float | None) -> str:
+        """Number and unit of a reading, with the digits of the smallest `step` (SI) that its instrument shows."""
         kind = self.quantities[key].kind
+        if not step or kind is Kind.NUMBER:
+            return self.of(key, value)
         shown = self.fitting(kind, value)
-        usual = shown._places(kind, shown.convert(value, kind))
-        if not uncertainty or kind is Kind.NUMBER:
-            return shown.of(key, value)
-        size = uncertainty / _unit(shown.unit_and_digits(kind)[0], kind).factor
-        return shown.text(value, kind, min(max(usual, -math.floor(math.log10(size))), usual + MOST_MORE))
+        size = step / _unit(shown.unit_and_digits(kind)[0], kind).factor
+        return shown.text(value, kind, max(0, -math.floor(math.log10(size) + 1e-9)))
 
     def label(self, key: str) -> str:
         """What a quantity of the nomenclature is called here, as the head of a line."""

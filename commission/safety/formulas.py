@@ -87,8 +87,10 @@ def emergency_ventilation_ashrae15(charge: float) -> float:
 
 
 def tonnes(kilograms: float) -> str:
-    """A mass in tonnes as a number for people, with two figures where it is small: 0.0019, 1.24."""
+    """A mass in tonnes as a number for people, with two figures where it is small: below 0.001, 0.0019, 1.24."""
     tonne = kilograms / 1000.0
+    if 0.0 < tonne < 0.001:
+        return "below 0.001"
     return f"{tonne:.2g}" if 0.0 < tonne < 0.1 else f"{tonne:.2f}"
 
 

@@ -46,7 +46,7 @@ def limit_devices(
         )
     _hottest_day(loaded, system_id, model, out)
     _setting_temperatures(loaded, system_id, fluid, out)
-    _lowest_trip(loaded, system_id, out)
+    _lowest_trip(loaded, system_id, fluid, out)
 
 
 def _hottest_day(loaded: LoadedPlant, system_id: str, model: SystemModel | None, out: Collector) -> None:
@@ -122,8 +122,9 @@ def _setting_temperatures(loaded: LoadedPlant, system_id: str, fluid: Refrigeran
         )
 
 
-def _lowest_trip(loaded: LoadedPlant, system_id: str, out: Collector) -> None:
-    """No cut-out acts so late that the low side draws in air, unless the plant was made to run below it."""
+def _lowest_trip(loaded: LoadedPlant, system_id: str, fluid: Refrigerant, out: Collector) -> None:
+    """No cut-out acts so late that the low side draws in air, unless the plant was made to run below it, or that carbon
+    dioxide turns to dry ice."""
     key = "low_pressure_trip_lowest"
     setting = loaded.system(system_id).controls.low_pressure_cut_out
     if setting is None:
@@ -134,4 +135,9 @@ def _lowest_trip(loaded: LoadedPlant, system_id: str, out: Collector) -> None:
         return
     rule = fact("low_pressure_trip_lowest")
     air = Input("pressure of the air", loaded.barometric_pressure, Kind.PRESSURE, "plant.altitude, ISO 2533")
-    out.add(key, rule.gauge_at(loaded.barometric_pressure), "air_kept_out", (air,), rule)
+    inputs: tuple[Input, ...] = (air,)
+    lowest = rule.gauge_at(loaded.barometric_pressure)
+    if fluid.name == "R-744":
+        solid = fact("carbon_dioxide_triple_point")
+        lowest, inputs = max(lowest, solid.value), (air, fact_input(solid))
+    out.add(key, lowest, "air_kept_out", inputs, rule)

@@ -185,12 +185,13 @@ def test_what_stands_together_is_shown_in_one_unit() -> None:
     assert Display("us_customary", BAROMETER).text(40.0, Kind.PRESSURE_DIFFERENCE) == "0.16 in w.g."
 
 
-def test_a_reading_keeps_the_digits_that_its_uncertainty_has_a_say_in() -> None:
-    """JCGM 100, 7.2.6: 34.814 °C with a standard uncertainty of 0.02 K is shown to 0.01, with 0.13 K to 0.1; a reading
-    whose uncertainty nobody knows as usual, a gauge counted from the air."""
+def test_a_reading_has_the_digits_of_its_instrument() -> None:
+    """34.814 °C by a probe of 0.01 K is shown to 0.01, by one of 0.1 or 0.2 K to 0.1; where nobody knows as usual; a
+    gauge counts from the air."""
     shown = Display("metric", 97650.0)
-    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.02) == "34.81 °C"
-    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.13) == "34.8 °C"
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.01) == "34.81 °C"
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.1) == "34.8 °C"
+    assert shown.measured("heat_sink_outlet_temperature", 307.964, 0.2) == "34.8 °C"
     assert shown.measured("heat_sink_outlet_temperature", 307.964, None) == "34.8 °C"
-    assert shown.measured("heating_capacity", 10041.2, 4.0) == "10.041 kW"
-    assert shown.measured("suction_pressure", 400000.0, 3000.0) == "3.02 bar g"
+    assert shown.measured("heating_capacity", 10041.2, 1.0) == "10.041 kW"
+    assert shown.measured("suction_pressure", 400000.0, 2000.0) == "3.02 bar g"

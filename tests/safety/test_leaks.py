@@ -6,6 +6,7 @@ import pytest
 
 from commission.properties import refrigerant
 from commission.safety import Substance, label_text, leak_duty, substance_of
+from commission.safety.formulas import tonnes as tonnes_text
 
 EU, US = "EU 2024/573", "US 40 CFR 82 and 84"
 
@@ -135,3 +136,8 @@ def test_the_label_of_propane() -> None:
     text = " ".join(label_text(EU, substance("R-290"), 0.45, False))
     assert "30 mm" in text
     assert "greenhouse" not in text
+
+
+def test_a_charge_that_counts_for_next_to_nothing_is_said_in_words() -> None:
+    """0.45 kg of R-290 with a GWP of 0.02 makes 9 grams: no power of ten on a label."""
+    assert [tonnes_text(x) for x in (0.009, 1.9, 345.0, 1620.0)] == ["below 0.001", "0.0019", "0.34", "1.62"]

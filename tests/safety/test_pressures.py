@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from pathlib import Path
 
 import pytest
 
@@ -143,6 +144,12 @@ def test_no_cut_out_may_act_below_the_air_of_its_site(plant: Plants, altitude: s
     assert "below the pressure of the air" in safety_figures(low, "one").not_calculated["low_pressure_trip_lowest"]
     none = plant(altitude=altitude, controls="high_pressure_limit: 22 bar g")
     assert "not stated" in safety_figures(none, "one").not_calculated["low_pressure_trip_lowest"]
+
+
+def test_carbon_dioxide_never_falls_to_its_triple_point(example_folder: Path) -> None:
+    """Its cut-out may act no lower than 5.18 bar absolute (Span and Wagner 1996; CoolProp: 5.180): dry ice below."""
+    lowest = safety_figures(load_plant(example_folder), "shower-water").found["low_pressure_trip_lowest"]
+    assert lowest.value == pytest.approx(refrigerant("R-744").dew(216.6).p, rel=0.002)
 
 
 @pytest.mark.parametrize(
