@@ -202,6 +202,12 @@ def _return_least(facts: Facts) -> float:
     return least if stated is None else max(stated, least)
 
 
+def _store_least(facts: Facts) -> float | None:
+    """The coldest that hot water may leave its store, K: 60 °C (HSG274 part 2; DVGW W 551). A dwelling has no figure."""
+    return None if facts.loaded.plant.plant.dwelling else float(fact("hot_water_hygiene").value)
+
+
+
 DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
     {
         "fluid.name": lambda f, _: f.substance.name,
@@ -252,6 +258,7 @@ DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
         "motor.outside": lambda f, _: f.system.compressor.build == "open",
         "ventilation.least": lambda f, _: _ventilation(f),
         "water.return_least": lambda f, _: _return_least(f),
+        "water.store_least": lambda f, _: _store_least(f),
         "rotation.matters": lambda f, _: _rotation(f),
     }
 )

@@ -75,6 +75,7 @@ WORDS: Mapping[str, tuple[Type, str, tuple[str, ...]]] = MappingProxyType(
         "motor.outside": ("yes/no", "an open compressor: its motor stands outside the refrigerant", ()),
         "ventilation.least": (Kind.VOLUME_FLOW, "air flow that the emergency ventilation must reach, as designed", ()),
         "water.return_least": (Kind.TEMPERATURE, "coldest that hot water may come back from its loop", ()),
+        "water.store_least": (Kind.TEMPERATURE, "coldest that hot water may leave its store outside a dwelling", ()),
         "rotation.matters": (
             "yes/no",
             "a compressor that turning backwards harms: scroll, screw or rotary, on three phases",

@@ -171,8 +171,8 @@ items:
 """,
     )
     order = [item.id for stage in found if stage.id == "charging" for item in stage.items]
-    assert order[2:6] == ["charging.keep-away", "charging.detector", "safety.three", "safety.four"]
-    assert order[6:9] == ["safety.one", "safety.two", "charging.weigh"]
+    assert order[0:4] == ["charging.keep-away", "charging.detector", "safety.three", "safety.four"]
+    assert order[4:7] == ["safety.one", "safety.two", "charging.weigh"]
 
 
 @pytest.mark.parametrize(

@@ -100,7 +100,7 @@ def test_what_every_calendar_must_have(started: Site) -> None:
 def test_notice_is_given_where_somebody_must_be_booked(started: Site) -> None:
     """Two weeks before what comes due every three months or less often; none for what is done every month."""
     for event in read_back(calendar(started.loaded)):
-        monthly = "Shut yourself in" in event.summary.value
+        monthly = "trapped-person alarm" in event.summary.value
         alarms = event.contents.get("valarm", [])
         assert len(alarms) == (0 if monthly else 1)
         assert all(alarm.trigger.value == dt.timedelta(days=-14) for alarm in alarms)

@@ -32,6 +32,7 @@ LAST_DAYS = {
     "low-pressure": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "discharge-limit": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "flow-switches": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
+    "interlock-sink": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "frost-protection": ("2025-02-28", "EN 378-4:2016 (yearly), from memory"),
     "frost-outdoors": ("2025-02-28", "common practice, no source"),
     "element-cut-out": ("2025-02-28", "common practice, no source"),
