@@ -203,9 +203,8 @@ def _return_least(facts: Facts) -> float:
 
 
 def _store_least(facts: Facts) -> float | None:
-    """The coldest that hot water may leave its store, K: 60 °C (HSG274 part 2; DVGW W 551). A dwelling has no figure."""
+    """The coldest that hot water may leave its store, K (HSG274 part 2; DVGW W 551); no figure in a dwelling."""
     return None if facts.loaded.plant.plant.dwelling else float(fact("hot_water_hygiene").value)
-
 
 
 DERIVED: Mapping[str, Callable[[Facts, str], Any]] = MappingProxyType(
