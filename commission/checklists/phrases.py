@@ -36,7 +36,8 @@ def _other_season(facts: Facts) -> str:
     if not outdoor_conditions(facts.loaded, facts.system_id):
         return "with the heat-sink liquid at least 5 K colder or warmer than in the test"
     days = facts.design_days
-    ends = [facts.display.text(days[word], Kind.TEMPERATURE) for word in ("coldest", "hottest") if word in days]
+    runs = [word for word in days if word in facts.predictions] or list(days)  # it may stand still on one of them
+    ends = [facts.display.text(days[word], Kind.TEMPERATURE) for word in ("coldest", "hottest") if word in runs]
     if not ends:
         return "as much colder or warmer outdoors than the test as the site offers"
     return f"at least half of the way from the test's outdoor air to {' or '.join(ends)}"

@@ -263,3 +263,20 @@ def test_water_pipes_are_tested_and_flushed_before_they_are_filled(listed: tuple
     order = ids(listed)
     there = [order.index(name) for name in (*chain, "electrical.pumps") if name in order]
     assert there == sorted(there)
+
+
+def test_each_of_several_compressors_is_proved(listed: tuple[Item, ...]) -> None:
+    """The plate of a machine with two motors protects neither: each has its own setting, sequence and limiter."""
+    order = ids(listed)
+    if "electrical.protection-each" in order:
+        assert "electrical.protection" not in order
+        assert "one after the other" in item_of(listed, "electrical.rotation").do
+        for name in ("safety.high-pressure", "first-start.oil", "live-trips.high-pressure"):
+            assert "each compressor" in item_of(listed, name).do
+
+
+def test_the_stop_is_proved_while_nothing_runs(listed: tuple[Item, ...]) -> None:
+    """An emergency stop that runs the plant to be tried is tried too late (ISO 13850)."""
+    order = ids(listed)
+    if "live-trips.stop-button" in order:
+        assert order.index("safety.stop-button") < order.index("charging.keep-away")
