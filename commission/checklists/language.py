@@ -9,9 +9,9 @@ by Kleene's three-valued logic, never false.
 from __future__ import annotations
 
 import ast
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Literal, cast
+from typing import Literal
 
 from commission.errors import InputError, Problem, nearest, shorten
 from commission.quantities import Explained, Kind, QuantityError, parse, parse_pressure
@@ -313,8 +313,3 @@ def _result_kind(left: Type, right: Type, operator: str) -> Kind | None:
     if operator == "*":
         return right if left in plain else None
     return Kind.NUMBER if left is right else None
-
-
-def is_sequence(node: ast.expr) -> Sequence[ast.expr]:
-    """The elements of a list in an expression."""
-    return cast(Sequence[ast.expr], getattr(node, "elts", ()))

@@ -12,7 +12,6 @@ from commission.description.model import Plant, System
 from commission.description.shapes import choices_of, inner, meaning_of, model_of
 
 SCHEMA_FILE = "plant.schema.json"
-PART_SCHEMA_FILE = "plant-part.schema.json"
 _POINTS_FROM_FILE = ("rated_points", "points")
 
 

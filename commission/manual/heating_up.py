@@ -13,7 +13,6 @@ from commission.manual.showing import Row, show
 from commission.quantities import Display, Explained, Kind
 
 _AIR = "heat_source_inlet_temperature"
-_TWO_HOURS = 7200.0
 
 
 @dataclass(frozen=True, slots=True)

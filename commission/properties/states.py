@@ -48,11 +48,6 @@ class State(NamedTuple):
         return (self.p_rho - self.T * self.p_t / self.rho) / self.rho
 
     @property
-    def h_t(self) -> float:
-        """dh/dT at constant density."""
-        return self.cv + self.p_t / self.rho
-
-    @property
     def s_rho(self) -> float:
         """ds/drho at constant temperature (a Maxwell relation)."""
         return -self.p_t / self.rho**2

@@ -110,11 +110,6 @@ def annualised_leak_rate(added: float, full_charge: float, days_since_last_addit
     return added / full_charge * 365 / min(365.0, days_since_last_addition)
 
 
-def relief_flow_vessel(area: float, latent_heat: float, heat_flux: float = 10e3) -> float:
-    """Relief mass flow in kg/s of a vessel heated from outside: φ·A/h_vap, φ = 10 kW/m² (EN 13136)."""
-    return heat_flux * area / latent_heat
-
-
 def concentration(ppm: float, molar_mass: float) -> float:
     """Mass concentration in kg/m³ at 25 °C and 101.325 kPa of a volume share in ppm; molar mass in kg/mol."""
     return ppm * 1e-6 * molar_mass * 101325 / (GAS_CONSTANT * 298.15)
